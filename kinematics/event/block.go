@@ -22,17 +22,18 @@ const (
 // Class says what kind of signal an object left.
 type Class uint8
 
-// The object classes.
+// The object classes. They start at 1, so that a column of zeros is a fault and
+// not a column of photons.
 const (
-	Photon   Class = iota // a calorimeter cluster without a track
-	Positive              // a track of positive charge
-	Negative              // a track of negative charge
-	Neutral               // a neutral hadron: in general a direction only
+	Photon   Class = iota + 1 // a calorimeter cluster without a track
+	Positive                  // a track of positive charge
+	Negative                  // a track of negative charge
+	Neutral                   // a neutral hadron: in general a direction only
 	classCount
 )
 
 // Valid reports whether the class is one of the four known ones.
-func (c Class) Valid() bool { return c < classCount }
+func (c Class) Valid() bool { return c >= Photon && c < classCount }
 
 // Bits of the measured mask: which of the three parameters of the coordinate
 // set are measured. An absent mask column means AllMeasured.

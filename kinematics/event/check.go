@@ -23,7 +23,7 @@ func (b *Block) Validate() error {
 	c.offsets("object_offsets", b.ObjectOffsets, events, rows)
 	for i, class := range b.Class {
 		if !class.Valid() {
-			c.fault(indexed("class", i), strconv.Itoa(int(class)), "0 to "+strconv.Itoa(int(classCount)-1))
+			c.fault(indexed("class", i), strconv.Itoa(int(class)), "1 to "+strconv.Itoa(int(classCount)-1))
 		}
 	}
 	c.coordinates(&b.Coordinates, rows)
@@ -94,7 +94,7 @@ func (c *checker) offsets(field string, offsets []int32, n, total int) bool {
 
 func (c *checker) coordinates(x *Coordinates, rows int) {
 	if !x.Kind.Valid() {
-		c.fault("coordinates.kind", strconv.Itoa(int(x.Kind)), "0 to "+strconv.Itoa(int(kindCount)-1))
+		c.fault("coordinates.kind", strconv.Itoa(int(x.Kind)), "1 to "+strconv.Itoa(int(kindCount)-1))
 		return
 	}
 	for i, column := range x.Columns {
@@ -113,7 +113,7 @@ func (c *checker) mask(field string, m *Mask, rows int, all uint8) {
 	c.length(field, len(m.Bits), rows)
 	for i, bits := range m.Bits {
 		if bits&^all != 0 {
-			c.fault(indexed(field, i), strconv.Itoa(int(bits)), "0 to "+strconv.Itoa(int(all)))
+			c.fault(indexed(field, i), strconv.Itoa(int(bits)), "1 to "+strconv.Itoa(int(all)))
 		}
 	}
 }

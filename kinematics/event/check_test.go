@@ -3,6 +3,7 @@ package event_test
 import (
 	"errors"
 	"math"
+	"slices"
 	"strings"
 	"testing"
 
@@ -161,7 +162,7 @@ func TestCheck(t *testing.T) {
 	})
 	t.Run("too many objects", func(t *testing.T) {
 		b := &event.Block{
-			EventIDs: []int64{1}, ObjectOffsets: []int32{0, 65}, Class: make([]event.Class, 65),
+			EventIDs: []int64{1}, ObjectOffsets: []int32{0, 65}, Class: slices.Repeat([]event.Class{event.Photon}, 65),
 		}
 		for k := range 4 {
 			b.Coordinates.Columns[k] = make([]float64, 65)

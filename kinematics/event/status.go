@@ -5,9 +5,10 @@ import "math"
 // Status says whether an event can be judged, and if not, why not.
 type Status uint8
 
-// The states of an event. Good is the only one in which the event is judged.
+// The states of an event. Good is the only one in which the event is judged in
+// full.
 const (
-	Good Status = iota
+	Good Status = iota + 1
 	// NonFinite marks an event with a NaN or an infinity in a measured column.
 	NonFinite
 	// NegativeEnergy marks an energy or a momentum's size below zero, of an
@@ -23,11 +24,14 @@ const (
 	// Expired marks an event whose latency budget ran out before it was judged.
 	// Checks of the block never give it.
 	Expired
+	// BudgetUsed marks an event judged in part: the work budget ended before every
+	// assignment had been tried. Hypotheses that accept do accept.
+	BudgetUsed
 	statusCount
 )
 
 // Valid reports whether the status is a known one.
-func (s Status) Valid() bool { return s < statusCount }
+func (s Status) Valid() bool { return s >= Good && s < statusCount }
 
 // String is the status in words.
 func (s Status) String() string {
@@ -46,6 +50,8 @@ func (s Status) String() string {
 		return "too many objects"
 	case Expired:
 		return "expired"
+	case BudgetUsed:
+		return "work budget used up"
 	case statusCount:
 	}
 	return "unknown"

@@ -29,7 +29,7 @@ const (
 type ObjectClass int32
 
 const (
-	// Not said; such an object matches no product.
+	// Never valid; a block that carries it is rejected.
 	ObjectClass_OBJECT_CLASS_UNSPECIFIED ObjectClass = 0
 	// A photon: a calorimeter cluster without a track.
 	ObjectClass_OBJECT_CLASS_PHOTON ObjectClass = 1

@@ -31,16 +31,22 @@ const (
 	EventStatus_EVENT_STATUS_UNSPECIFIED EventStatus = 0
 	// Judged.
 	EventStatus_EVENT_STATUS_JUDGED EventStatus = 1
-	// Not judged: a value is not finite or outside its range.
-	EventStatus_EVENT_STATUS_BAD EventStatus = 2
+	// Not judged: a NaN or an infinity in a measured column.
+	EventStatus_EVENT_STATUS_NON_FINITE EventStatus = 2
+	// Not judged: an energy or a momentum below zero.
+	EventStatus_EVENT_STATUS_NEGATIVE_ENERGY EventStatus = 3
+	// Not judged: a standard deviation or variance below zero.
+	EventStatus_EVENT_STATUS_NEGATIVE_SPREAD EventStatus = 4
+	// Not judged: an angle, mass or degree of polarisation outside its range.
+	EventStatus_EVENT_STATUS_OUT_OF_RANGE EventStatus = 5
 	// Not judged: more objects than an event may have.
-	EventStatus_EVENT_STATUS_OVERSIZED EventStatus = 3
+	EventStatus_EVENT_STATUS_OVERSIZED EventStatus = 6
 	// Not judged: the latency budget of the stream was used up before. The only
 	// status that may differ when the same events are judged again.
-	EventStatus_EVENT_STATUS_EXPIRED EventStatus = 4
+	EventStatus_EVENT_STATUS_EXPIRED EventStatus = 7
 	// Judged in part: the work budget was used up before every assignment had
 	// been tried. Hypotheses that accept do accept.
-	EventStatus_EVENT_STATUS_BUDGET_USED EventStatus = 5
+	EventStatus_EVENT_STATUS_BUDGET_USED EventStatus = 8
 )
 
 // Enum value maps for EventStatus.
@@ -48,18 +54,24 @@ var (
 	EventStatus_name = map[int32]string{
 		0: "EVENT_STATUS_UNSPECIFIED",
 		1: "EVENT_STATUS_JUDGED",
-		2: "EVENT_STATUS_BAD",
-		3: "EVENT_STATUS_OVERSIZED",
-		4: "EVENT_STATUS_EXPIRED",
-		5: "EVENT_STATUS_BUDGET_USED",
+		2: "EVENT_STATUS_NON_FINITE",
+		3: "EVENT_STATUS_NEGATIVE_ENERGY",
+		4: "EVENT_STATUS_NEGATIVE_SPREAD",
+		5: "EVENT_STATUS_OUT_OF_RANGE",
+		6: "EVENT_STATUS_OVERSIZED",
+		7: "EVENT_STATUS_EXPIRED",
+		8: "EVENT_STATUS_BUDGET_USED",
 	}
 	EventStatus_value = map[string]int32{
-		"EVENT_STATUS_UNSPECIFIED": 0,
-		"EVENT_STATUS_JUDGED":      1,
-		"EVENT_STATUS_BAD":         2,
-		"EVENT_STATUS_OVERSIZED":   3,
-		"EVENT_STATUS_EXPIRED":     4,
-		"EVENT_STATUS_BUDGET_USED": 5,
+		"EVENT_STATUS_UNSPECIFIED":     0,
+		"EVENT_STATUS_JUDGED":          1,
+		"EVENT_STATUS_NON_FINITE":      2,
+		"EVENT_STATUS_NEGATIVE_ENERGY": 3,
+		"EVENT_STATUS_NEGATIVE_SPREAD": 4,
+		"EVENT_STATUS_OUT_OF_RANGE":    5,
+		"EVENT_STATUS_OVERSIZED":       6,
+		"EVENT_STATUS_EXPIRED":         7,
+		"EVENT_STATUS_BUDGET_USED":     8,
 	}
 )
 
@@ -590,14 +602,17 @@ const file_kinegate_v1_verdict_proto_rawDesc = "" +
 	"\vassignments\x18\b \x01(\fR\vassignments\x12-\n" +
 	"\x12observable_offsets\x18\t \x01(\fR\x11observableOffsets\x12 \n" +
 	"\vobservables\x18\n" +
-	" \x01(\fR\vobservables*\xae\x01\n" +
+	" \x01(\fR\vobservables*\x98\x02\n" +
 	"\vEventStatus\x12\x1c\n" +
 	"\x18EVENT_STATUS_UNSPECIFIED\x10\x00\x12\x17\n" +
-	"\x13EVENT_STATUS_JUDGED\x10\x01\x12\x14\n" +
-	"\x10EVENT_STATUS_BAD\x10\x02\x12\x1a\n" +
-	"\x16EVENT_STATUS_OVERSIZED\x10\x03\x12\x18\n" +
-	"\x14EVENT_STATUS_EXPIRED\x10\x04\x12\x1c\n" +
-	"\x18EVENT_STATUS_BUDGET_USED\x10\x05*a\n" +
+	"\x13EVENT_STATUS_JUDGED\x10\x01\x12\x1b\n" +
+	"\x17EVENT_STATUS_NON_FINITE\x10\x02\x12 \n" +
+	"\x1cEVENT_STATUS_NEGATIVE_ENERGY\x10\x03\x12 \n" +
+	"\x1cEVENT_STATUS_NEGATIVE_SPREAD\x10\x04\x12\x1d\n" +
+	"\x19EVENT_STATUS_OUT_OF_RANGE\x10\x05\x12\x1a\n" +
+	"\x16EVENT_STATUS_OVERSIZED\x10\x06\x12\x18\n" +
+	"\x14EVENT_STATUS_EXPIRED\x10\a\x12\x1c\n" +
+	"\x18EVENT_STATUS_BUDGET_USED\x10\b*a\n" +
 	"\vEntryStatus\x12\x1c\n" +
 	"\x18ENTRY_STATUS_UNSPECIFIED\x10\x00\x12\x19\n" +
 	"\x15ENTRY_STATUS_ACCEPTED\x10\x01\x12\x19\n" +
