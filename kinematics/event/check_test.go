@@ -68,7 +68,7 @@ func TestValidateFindsEachFault(t *testing.T) {
 		{"object_offsets[0]", func(b *event.Block) { b.ObjectOffsets[0] = 1 }},
 		{"object_offsets[2]", func(b *event.Block) { b.ObjectOffsets[2] = 1 }},
 		{"object_offsets[3]", func(b *event.Block) { b.ObjectOffsets[3] = 4 }},
-		{"class[1]", func(b *event.Block) { b.Class[1] = 4 }},
+		{"class[1]", func(b *event.Block) { b.Class[1] = 5 }},
 		{"coordinates.kind", func(b *event.Block) { b.Coordinates.Kind = 9 }},
 		{"coordinates.theta_rad.length", func(b *event.Block) { b.Coordinates.Columns[1] = nil }},
 		{"coordinates.columns", func(b *event.Block) { b.Coordinates.Columns[3] = []float64{1, 2, 3} }},
