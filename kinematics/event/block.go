@@ -141,9 +141,9 @@ type Vertex struct {
 // Groups are the displaced vertices. Event i owns the groups from Offsets[i]
 // up to, not including, Offsets[i+1].
 type Groups struct {
-	// OfObject is the group of each object, counted within its event, or -1 for
-	// the event's own vertex.
-	OfObject []int16
+	// OfObject is the group of each object: 0 for the event's own vertex, g for
+	// the g-th group of its event.
+	OfObject []int32
 	// Offsets counts the groups before each event.
 	Offsets []int32
 	// Position of each group in metres.

@@ -160,11 +160,11 @@ func (c *checker) groups(b *Block) {
 		return // the object offsets may be unsound too, and the loop leans on them
 	}
 	for i := range b.EventIDs {
-		count := int16(min(int(g.Offsets[i+1]-g.Offsets[i]), MaxObjectsPerEvent)) //nolint:gosec // at most 64
+		count := g.Offsets[i+1] - g.Offsets[i]
 		first, end := b.Objects(i)
 		for row := first; row < end; row++ {
-			if k := g.OfObject[row]; k < -1 || k >= count {
-				c.fault(indexed("groups.of_object", row), strconv.Itoa(int(k)), "-1 to "+strconv.Itoa(int(count)-1))
+			if k := g.OfObject[row]; k < 0 || k > count {
+				c.fault(indexed("groups.of_object", row), strconv.Itoa(int(k)), "0 to "+strconv.Itoa(int(count)))
 			}
 		}
 	}

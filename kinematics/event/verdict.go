@@ -51,36 +51,39 @@ type VerdictBlock struct {
 
 // Entries are the judged combinations of hypothesis, beam candidate and
 // assignment. Event i owns the entries from Offsets[i] up to, not including,
-// Offsets[i+1].
+// Offsets[i+1]; entry k owns the observables and the assignment elements that
+// ObservableOffsets and AssignmentOffsets bound in the same way.
 type Entries struct {
 	Offsets []int32
 	// Hypothesis is the number of the hypothesis.
 	Hypothesis []int16
-	// BeamRow is the row of the beam candidate in the block, or -1 for none.
-	BeamRow []int32
+	// BeamRow is the beam candidate within its event, or -1 for none.
+	BeamRow []int16
 	// Weight of the beam candidate, by prompt or side-band window.
 	Weight []float64
 	Status []EntryStatus
+	// Tried is the number of assignments tried.
+	Tried []int32
 	// ChiSquare, NDF and Probability of the fit; NaN, 0 and NaN without one.
 	ChiSquare   []float64
 	NDF         []int16
 	Probability []float64
-	// Observables holds ObservableStride[h] numbers for an entry of hypothesis
-	// h, entry after entry; NaN is not computed.
-	Observables      []float64
-	ObservableStride []int32
-	// Assignment holds AssignmentStride[h] numbers for an entry of hypothesis h:
-	// for each product the object's index within its event, or -1.
-	Assignment       []int16
-	AssignmentStride []int32
+	// Observables that the hypothesis records, in its order; NaN is not computed.
+	Observables       []float64
+	ObservableOffsets []int32
+	// Assignment is, for each product, the object's index within its event, or
+	// -1 for a product that no object stands for.
+	Assignment        []int16
+	AssignmentOffsets []int32
 }
 
 // Entry is one row of Entries. Its slices alias the columns.
 type Entry struct {
 	Hypothesis  int16
-	BeamRow     int32
+	BeamRow     int16
 	Weight      float64
 	Status      EntryStatus
+	Tried       int32
 	ChiSquare   float64
 	NDF         int16
 	Probability float64
@@ -88,50 +91,57 @@ type Entry struct {
 	Assignment  []int16
 }
 
-// Append adds a row. The lengths of its slices are the strides of its
-// hypothesis.
+// Len is the number of entries.
+func (e *Entries) Len() int { return len(e.Hypothesis) }
+
+// Row returns entry k.
+func (e *Entries) Row(k int) Entry {
+	o, oEnd := e.ObservableOffsets[k], e.ObservableOffsets[k+1]
+	a, aEnd := e.AssignmentOffsets[k], e.AssignmentOffsets[k+1]
+	return Entry{
+		Hypothesis: e.Hypothesis[k], BeamRow: e.BeamRow[k], Weight: e.Weight[k],
+		Status: e.Status[k], Tried: e.Tried[k],
+		ChiSquare: e.ChiSquare[k], NDF: e.NDF[k], Probability: e.Probability[k],
+		Observables: e.Observables[o:oEnd:oEnd], Assignment: e.Assignment[a:aEnd:aEnd],
+	}
+}
+
+// Reset empties the columns and keeps their memory.
+func (e *Entries) Reset() {
+	*e = Entries{
+		Offsets:           append(e.Offsets[:0], 0),
+		Hypothesis:        e.Hypothesis[:0],
+		BeamRow:           e.BeamRow[:0],
+		Weight:            e.Weight[:0],
+		Status:            e.Status[:0],
+		Tried:             e.Tried[:0],
+		ChiSquare:         e.ChiSquare[:0],
+		NDF:               e.NDF[:0],
+		Probability:       e.Probability[:0],
+		Observables:       e.Observables[:0],
+		ObservableOffsets: append(e.ObservableOffsets[:0], 0),
+		Assignment:        e.Assignment[:0],
+		AssignmentOffsets: append(e.AssignmentOffsets[:0], 0),
+	}
+}
+
+// Append adds an entry to the event being written, after Reset.
 func (e *Entries) Append(row Entry) {
 	e.Hypothesis = append(e.Hypothesis, row.Hypothesis)
 	e.BeamRow = append(e.BeamRow, row.BeamRow)
 	e.Weight = append(e.Weight, row.Weight)
 	e.Status = append(e.Status, row.Status)
+	e.Tried = append(e.Tried, row.Tried)
 	e.ChiSquare = append(e.ChiSquare, row.ChiSquare)
 	e.NDF = append(e.NDF, row.NDF)
 	e.Probability = append(e.Probability, row.Probability)
 	e.Observables = append(e.Observables, row.Observables...)
+	e.ObservableOffsets = append(e.ObservableOffsets, int32(len(e.Observables))) //nolint:gosec // bounded by the reply's size
 	e.Assignment = append(e.Assignment, row.Assignment...)
+	e.AssignmentOffsets = append(e.AssignmentOffsets, int32(len(e.Assignment))) //nolint:gosec // bounded by the reply's size
 }
 
-// Reset empties the rows and keeps their memory and the strides.
-func (e *Entries) Reset() {
-	e.Offsets = e.Offsets[:0]
-	e.Hypothesis = e.Hypothesis[:0]
-	e.BeamRow = e.BeamRow[:0]
-	e.Weight = e.Weight[:0]
-	e.Status = e.Status[:0]
-	e.ChiSquare = e.ChiSquare[:0]
-	e.NDF = e.NDF[:0]
-	e.Probability = e.Probability[:0]
-	e.Observables = e.Observables[:0]
-	e.Assignment = e.Assignment[:0]
-}
-
-// All calls yield with the index and the content of every entry in order,
-// until yield returns false.
-func (e *Entries) All(yield func(int, Entry) bool) {
-	observable, assigned := 0, 0
-	for i, h := range e.Hypothesis {
-		o := observable + int(e.ObservableStride[h])
-		a := assigned + int(e.AssignmentStride[h])
-		row := Entry{
-			Hypothesis: h, BeamRow: e.BeamRow[i], Weight: e.Weight[i], Status: e.Status[i],
-			ChiSquare: e.ChiSquare[i], NDF: e.NDF[i], Probability: e.Probability[i],
-			Observables: e.Observables[observable:o:o],
-			Assignment:  e.Assignment[assigned:a:a],
-		}
-		if !yield(i, row) {
-			return
-		}
-		observable, assigned = o, a
-	}
+// EndEvent closes the event being written; the next Append starts another.
+func (e *Entries) EndEvent() {
+	e.Offsets = append(e.Offsets, int32(e.Len())) //nolint:gosec // bounded by the reply's size
 }
