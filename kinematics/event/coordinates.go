@@ -11,8 +11,8 @@ const (
 	EnergyMomentum Kind = iota
 	// MomentumMass is px, py, pz and the mass.
 	MomentumMass
-	// TransverseMass is transverse momentum, pseudorapidity, phi and the mass.
-	TransverseMass
+	// TransverseMomentum is transverse momentum, pseudorapidity, phi and the mass.
+	TransverseMomentum
 	// MomentumAngles is the size of the momentum, theta and phi. The momentum of
 	// a photon is its energy, so mixed events fit.
 	MomentumAngles
@@ -39,7 +39,7 @@ func (k Kind) Valid() bool { return k < kindCount }
 // Columns is the number of columns of the set, 0 for an unknown kind.
 func (k Kind) Columns() int {
 	switch k {
-	case EnergyMomentum, MomentumMass, TransverseMass:
+	case EnergyMomentum, MomentumMass, TransverseMomentum:
 		return maxColumns
 	case MomentumAngles, MomentumSlopes:
 		return maxColumns - 1
@@ -55,8 +55,8 @@ func (k Kind) String() string {
 		return "energy_momentum"
 	case MomentumMass:
 		return "momentum_mass"
-	case TransverseMass:
-		return "transverse_mass"
+	case TransverseMomentum:
+		return "transverse_momentum"
 	case MomentumAngles:
 		return "momentum_angles"
 	case MomentumSlopes:
@@ -76,7 +76,7 @@ func (k Kind) ColumnName(i int) string {
 		return [...]string{"px_gev", "py_gev", "pz_gev", "energy_gev"}[i]
 	case MomentumMass:
 		return [...]string{"px_gev", "py_gev", "pz_gev", "mass_gev"}[i]
-	case TransverseMass:
+	case TransverseMomentum:
 		return [...]string{"transverse_momentum_gev", "pseudorapidity", "phi_rad", "mass_gev"}[i]
 	case MomentumAngles:
 		return [...]string{"momentum_gev", "theta_rad", "phi_rad"}[i]

@@ -124,7 +124,7 @@ func checkColumn(kind Kind, k int, v float64) Status {
 		if k == 3 && v < 0 {
 			return OutOfRange
 		}
-	case TransverseMass:
+	case TransverseMomentum:
 		if k == 0 && v < 0 {
 			return NegativeEnergy
 		}
