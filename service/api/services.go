@@ -1,0 +1,85 @@
+package api
+
+import (
+	"time"
+
+	"google.golang.org/grpc"
+)
+
+// NumericsVersion is raised by any change of the bits of an event, a fit or a
+// verdict. It is part of every selection digest.
+const NumericsVersion = 1
+
+// Caution is what every user of the program should have read.
+const Caution = "kinegate is a planning and selection tool, never a safety system: no interlock, " +
+	"shielding or dose decision may rest on it. Local radiation-safety rules and licensed " +
+	"practice decide."
+
+// Deps is what the services need from outside. The zero value of each optional part
+// does nothing.
+type Deps struct {
+	// Version is the version of the program.
+	Version string
+	// Limits are the sizes to hold callers to.
+	Limits Limits
+	// Now tells the time, for latency budgets and heartbeats; time.Now if nil.
+	Now func() time.Time
+	// Drain says when to leave. Optional.
+	Drain Drain
+	// Observer sees what happens on judge streams. Optional.
+	Observer StreamObserver
+}
+
+// Drain tells the streams that the server will leave.
+type Drain struct {
+	// Started is closed when draining starts: streams then read no more, answer
+	// what they have read, say so and end. Nil never starts.
+	Started <-chan struct{}
+	// Grace is the time from then until the connections are cut.
+	Grace time.Duration
+}
+
+// StreamObserver sees what happens on judge streams. Its methods may be called from
+// any goroutine and do not block.
+type StreamObserver interface {
+	// StreamOpened counts an accepted opening.
+	StreamOpened()
+	// StreamClosed counts the end of an opened stream; the reason is "done",
+	// "draining" or that of the failure.
+	StreamClosed(reason string)
+	// EventsJudged counts events by verdict: "accepted", "rejected", or the status
+	// of events that were not judged.
+	EventsJudged(verdict string, count int)
+	// BlockAnswered measures the time from the receipt of a block to its answer.
+	BlockAnswered(latency time.Duration)
+	// CreditHeld changes the sum of byte credits handed out by delta.
+	CreditHeld(delta int64)
+}
+
+// Services are the rpc services of one server.
+type Services struct {
+	deps Deps
+}
+
+// New returns the services.
+func New(deps Deps) *Services {
+	if deps.Now == nil {
+		deps.Now = time.Now
+	}
+	if deps.Observer == nil {
+		deps.Observer = silent{}
+	}
+	return &Services{deps: deps}
+}
+
+// Register adds every service to a server.
+func (s *Services) Register(_ grpc.ServiceRegistrar) {}
+
+// silent is the observer that does nothing.
+type silent struct{}
+
+func (silent) StreamOpened()               {}
+func (silent) StreamClosed(string)         {}
+func (silent) EventsJudged(string, int)    {}
+func (silent) BlockAnswered(time.Duration) {}
+func (silent) CreditHeld(int64)            {}
