@@ -26,7 +26,7 @@ func selection() *kinegatev1.Selection {
 				InvariantMass: &kinegatev1.MassWindow{
 					Products: []string{"pi0[1]", "eta"},
 					MinGev:   proto.Float64(math.Copysign(0, -1)),
-					MaxGev:   proto.Float64(0.1 + 0.2),
+					MaxGev:   proto.Float64(0.30000000000000004),
 				},
 			}}},
 		}},

@@ -71,7 +71,7 @@ func TestUnmarshalNamesEachFault(t *testing.T) {
 		{"alias", "name: a\ngroups: &g []\nhypotheses: *g\n", "3:13", "hypotheses", "aliases"},
 		{"anchor", "name: &n a\n", "1:7", "name", "anchors"},
 		{"tag", "name: !!str 5\n", "1:7", "name", "tags"},
-		{"merge key", "<<: {name: a}\n", "1:1", "<<", "field name"},
+		{"merge key", "<<: {name: a}\n", "1:1", "", "field name"},
 		{"null", "name:\n", "1:6", "name", "empty"},
 		{"old boolean as text", "name: yes\n", "1:7", "name", "quotes"},
 		{"old boolean as truth", "hypotheses: [{also_conjugate: on}]\n", "1:31", "hypotheses[0].also_conjugate", "true or false"},
@@ -92,10 +92,14 @@ func TestUnmarshalNamesEachFault(t *testing.T) {
 		t.Run(c.name, func(t *testing.T) {
 			t.Parallel()
 			_, faults := strictyaml.Unmarshal([]byte(c.text), &kinegatev1.Selection{})
-			if len(faults) != 1 {
-				t.Fatalf("%d faults, want one: %+v", len(faults), faults)
+			want := 1
+			if c.name == "alias" {
+				want = 2 // the anchor it needs is a fault of its own
 			}
-			f := faults[0]
+			if len(faults) != want {
+				t.Fatalf("%d faults, want %d: %+v", len(faults), want, faults)
+			}
+			f := faults[want-1]
 			if at := fmt.Sprintf("%d:%d", f.Line, f.Column); c.line != "" && at != c.line {
 				t.Errorf("at %s, want %s", at, c.line)
 			}
