@@ -23,12 +23,12 @@ func (b *Block) Validate() error {
 	c.offsets("object_offsets", b.ObjectOffsets, events, rows)
 	for i, class := range b.Class {
 		if !class.Valid() {
-			c.fault(indexed("class", i), strconv.Itoa(int(class)), "1 to "+strconv.Itoa(int(classCount)-1))
+			c.fault(indexed("object_classes", i), strconv.Itoa(int(class)), "1 to "+strconv.Itoa(int(classCount)-1))
 		}
 	}
 	c.coordinates(&b.Coordinates, rows)
-	c.mask("measured", b.Measured, rows, AllMeasured)
-	c.mask("species", b.Species, rows, SpeciesAll)
+	c.mask("measured_mask", b.Measured, rows, AllMeasured)
+	c.mask("species_mask", b.Species, rows, SpeciesAll)
 	c.covariance("covariance", b.Covariance, rows)
 	c.beam(b.Beam, events)
 	if b.Vertex != nil {
@@ -37,12 +37,12 @@ func (b *Block) Validate() error {
 	}
 	c.groups(b)
 	if b.Clusters != nil {
-		c.positions("clusters", b.Clusters, rows)
+		c.positions("cluster_position", b.Clusters, rows)
 	}
 	if p := b.Polarisation; p != nil {
-		c.length("polarisation.linear", len(p.Linear), events)
+		c.length("polarisation.linear_degree", len(p.Linear), events)
 		c.length("polarisation.plane_rad", len(p.PlaneRad), events)
-		c.length("polarisation.circular", len(p.Circular), events)
+		c.length("polarisation.circular_degree", len(p.Circular), events)
 	}
 	return c.found.Err()
 }
@@ -150,12 +150,12 @@ func (c *checker) groups(b *Block) {
 	}
 	rows := len(g.Position.X)
 	if rows > MaxObjects {
-		c.fault("groups.offsets", strconv.Itoa(rows), "at most "+strconv.Itoa(MaxObjects)+" groups")
+		c.fault("vertex_group.offsets", strconv.Itoa(rows), "at most "+strconv.Itoa(MaxObjects)+" groups")
 	}
-	sound := c.offsets("groups.offsets", g.Offsets, b.Events(), rows)
-	c.positions("groups.position", &g.Position, rows)
-	c.covariance("groups.covariance", g.Covariance, rows)
-	sound = c.length("groups.of_object", len(g.OfObject), b.Rows()) && sound
+	sound := c.offsets("vertex_group.offsets", g.Offsets, b.Events(), rows)
+	c.positions("vertex_group", &g.Position, rows)
+	c.covariance("vertex_group.covariance", g.Covariance, rows)
+	sound = c.length("vertex_group.groups", len(g.OfObject), b.Rows()) && sound
 	if !sound || len(c.found) > 0 {
 		return // the object offsets may be unsound too, and the loop leans on them
 	}
@@ -164,7 +164,7 @@ func (c *checker) groups(b *Block) {
 		first, end := b.Objects(i)
 		for row := first; row < end; row++ {
 			if k := g.OfObject[row]; k < 0 || k > count {
-				c.fault(indexed("groups.of_object", row), strconv.Itoa(int(k)), "0 to "+strconv.Itoa(int(count)))
+				c.fault(indexed("vertex_group.groups", row), strconv.Itoa(int(k)), "0 to "+strconv.Itoa(int(count)))
 			}
 		}
 	}

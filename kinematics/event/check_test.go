@@ -68,25 +68,25 @@ func TestValidateFindsEachFault(t *testing.T) {
 		{"object_offsets[0]", func(b *event.Block) { b.ObjectOffsets[0] = 1 }},
 		{"object_offsets[2]", func(b *event.Block) { b.ObjectOffsets[2] = 1 }},
 		{"object_offsets[3]", func(b *event.Block) { b.ObjectOffsets[3] = 4 }},
-		{"class[1]", func(b *event.Block) { b.Class[1] = 5 }},
+		{"object_classes[1]", func(b *event.Block) { b.Class[1] = 5 }},
 		{"coordinates.kind", func(b *event.Block) { b.Coordinates.Kind = 9 }},
 		{"coordinates.theta_rad.length", func(b *event.Block) { b.Coordinates.Columns[1] = nil }},
 		{"coordinates.columns", func(b *event.Block) { b.Coordinates.Columns[3] = []float64{1, 2, 3} }},
-		{"measured[0]", func(b *event.Block) { b.Measured.Bits[0] = 8 }},
-		{"measured.length", func(b *event.Block) { b.Measured.Bits = nil }},
-		{"species[2]", func(b *event.Block) { b.Species.Bits[2] = 64 }},
+		{"measured_mask[0]", func(b *event.Block) { b.Measured.Bits[0] = 8 }},
+		{"measured_mask.length", func(b *event.Block) { b.Measured.Bits = nil }},
+		{"species_mask[2]", func(b *event.Block) { b.Species.Bits[2] = 64 }},
 		{"covariance.length", func(b *event.Block) { b.Covariance.Packed = b.Covariance.Packed[1:] }},
 		{"beam.offsets[2]", func(b *event.Block) { b.Beam.Offsets[2] = 0 }},
 		{"beam.sigma_gev.length", func(b *event.Block) { b.Beam.SigmaGeV = nil }},
 		{"beam.time_ns.length", func(b *event.Block) { b.Beam.TimeNS = nil }},
 		{"vertex.y_m.length", func(b *event.Block) { b.Vertex.Y = nil }},
 		{"vertex.covariance.length", func(b *event.Block) { b.Vertex.Covariance.Packed = nil }},
-		{"groups.of_object[1]", func(b *event.Block) { b.Groups.OfObject[1] = 2 }},
-		{"groups.of_object[2]", func(b *event.Block) { b.Groups.OfObject[2] = -1 }},
-		{"groups.position.z_m.length", func(b *event.Block) { b.Groups.Position.Z = nil }},
-		{"groups.covariance.length", func(b *event.Block) { b.Groups.Covariance.Packed = nil }},
-		{"clusters.x_m.length", func(b *event.Block) { b.Clusters.X = nil }},
-		{"polarisation.circular.length", func(b *event.Block) { b.Polarisation.Circular = nil }},
+		{"vertex_group.groups[1]", func(b *event.Block) { b.Groups.OfObject[1] = 2 }},
+		{"vertex_group.groups[2]", func(b *event.Block) { b.Groups.OfObject[2] = -1 }},
+		{"vertex_group.z_m.length", func(b *event.Block) { b.Groups.Position.Z = nil }},
+		{"vertex_group.covariance.length", func(b *event.Block) { b.Groups.Covariance.Packed = nil }},
+		{"cluster_position.x_m.length", func(b *event.Block) { b.Clusters.X = nil }},
+		{"polarisation.circular_degree.length", func(b *event.Block) { b.Polarisation.Circular = nil }},
 		{"event_ids", func(b *event.Block) {
 			*b = event.Block{
 				EventIDs: make([]int64, event.MaxEvents+1), ObjectOffsets: make([]int32, event.MaxEvents+2)}
@@ -115,7 +115,7 @@ func TestValidateReportsAllAtOnce(t *testing.T) {
 	b := sample()
 	b.Class[0], b.Beam.TimeNS, b.Clusters.X = 77, nil, nil
 	text := b.Validate().Error()
-	for _, field := range []string{"class[0]", "beam.time_ns.length", "clusters.x_m.length"} {
+	for _, field := range []string{"object_classes[0]", "beam.time_ns.length", "cluster_position.x_m.length"} {
 		if !strings.Contains(text, field) {
 			t.Errorf("%s is missing from %q", field, text)
 		}

@@ -989,8 +989,8 @@ func (x *VertexColumns) GetCovarianceM2() []byte {
 // VertexGroupColumns says which objects come from a displaced vertex.
 type VertexGroupColumns struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
-	// Group of each object, int16: its number within the event from 0, or -1
-	// for the event vertex.
+	// Group of each object, int32: 0 is the event vertex, g the g-th group of
+	// the event.
 	Groups []byte `protobuf:"bytes,1,opt,name=groups,proto3" json:"groups,omitempty"`
 	// First group of each event and the total at the end, int32, as
 	// object_offsets.
