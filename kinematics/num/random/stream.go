@@ -1,0 +1,74 @@
+package random
+
+import "math/bits"
+
+// Purpose separates the streams of one seed. Its values are frozen: they are
+// part of the key.
+type Purpose uint64
+
+// The purposes. Their numbers never change and are never used again.
+const (
+	// Generation draws what happens: beam, production, decays.
+	Generation Purpose = 1
+	// Detection draws what is measured of it.
+	Detection Purpose = 2
+	// Bounds draws the samples that measure an unweighting bound.
+	Bounds Purpose = 3
+	// Judging draws the prescale decisions of a selection.
+	Judging Purpose = 4
+)
+
+// Stream is the sequence of draws of one event. The key is (seed, purpose), the
+// counter of draw d is (d/4, event, 0, 0) and its word is d mod 4. A Stream is a
+// value; copying it forks the sequence.
+type Stream struct {
+	key     [2]uint64
+	event   uint64
+	block   uint64
+	pending int
+	words   [4]uint64
+}
+
+// New returns the stream of an event.
+func New(seed uint64, purpose Purpose, event int64) Stream {
+	return Stream{key: [2]uint64{seed, uint64(purpose)}, event: uint64(event)} //nolint:gosec // the bits of the id
+}
+
+// Draws is the number of words drawn so far.
+func (s *Stream) Draws() uint64 { return 4*s.block - uint64(s.pending) } //nolint:gosec // 0 to 3
+
+// Word returns the next 64 random bits.
+func (s *Stream) Word() uint64 {
+	if s.pending == 0 {
+		s.refill()
+	}
+	s.pending--
+	return s.words[3-s.pending]
+}
+
+func (s *Stream) refill() {
+	s.words = Philox([4]uint64{s.block, s.event, 0, 0}, s.key)
+	s.block++
+	s.pending = 4
+}
+
+// Uniform returns a double u from one word, 0 < u < 1, equally likely each of
+// the 2^52 values (k + 1/2) 2^-52: exact, symmetric about 1/2, and neither end
+// is ever reached. (With one bit more the largest k + 1/2 would round to 1.)
+func (s *Stream) Uniform() float64 {
+	return (float64(s.Word()>>12) + 0.5) * (1.0 / (1 << 52))
+}
+
+// Below returns a whole number k, 0 <= k < n, from one word: the high half of
+// word times n, whose bias is below n 2^-64. It returns 0 for n < 1.
+func (s *Stream) Below(n int) int {
+	if n < 1 {
+		return 0
+	}
+	k, _ := bits.Mul64(s.Word(), uint64(n))
+	return int(k) //nolint:gosec // below n
+}
+
+// Chance reports true with probability p, from one word. For p <= 0 it is never
+// true, for p >= 1 always; the word is drawn all the same.
+func (s *Stream) Chance(p float64) bool { return s.Uniform() < p }
