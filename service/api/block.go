@@ -1,0 +1,189 @@
+package api
+
+import (
+	"encoding/binary"
+	"math"
+	"strconv"
+
+	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+
+	"example.org/kinegate/kinematics/event"
+	"example.org/kinegate/kinematics/fault"
+)
+
+// eventBlock converts the columns of a message to those of the core and checks
+// their structure. The error is a fault.List with the paths of the message.
+//
+// Columns may start at any address within the message, so numbers are put
+// together byte by byte instead of being viewed in place.
+func eventBlock(m *kinegatev1.EventBlock) (*event.Block, error) {
+	c := &columns{}
+	b := &event.Block{
+		EventIDs:      c.int64s("event_ids", m.GetEventIds()),
+		RunNumber:     m.GetRunNumber(),
+		ObjectOffsets: c.int32s("object_offsets", m.GetObjectOffsets()),
+		Class:         classes(m.GetObjectClasses()),
+	}
+	b.Coordinates = c.coordinates(m)
+	if x := m.GetMeasuredMask(); x != nil {
+		b.Measured = &event.Mask{Bits: x.GetMasks()}
+	}
+	if x := m.GetSpeciesMask(); x != nil {
+		b.Species = &event.Mask{Bits: x.GetMasks()}
+	}
+	if x := m.GetCovariance(); x != nil {
+		b.Covariance = &event.Covariance{Packed: c.float64s("covariance.elements", x.GetElements())}
+	}
+	if x := m.GetBeam(); x != nil {
+		b.Beam = &event.Beam{
+			Offsets:   c.int32s("beam.offsets", x.GetOffsets()),
+			EnergyGeV: c.float64s("beam.energy_gev", x.GetEnergyGev()),
+			SigmaGeV:  c.float64s("beam.sigma_gev", x.GetSigmaGev()),
+			TimeNS:    c.float64s("beam.time_ns", x.GetTimeNs()),
+		}
+	}
+	if x := m.GetVertex(); x != nil {
+		b.Vertex = &event.Vertex{
+			Positions:  c.positions("vertex", x),
+			Covariance: c.covariance("vertex.covariance_m2", x.CovarianceM2),
+		}
+	}
+	if x := m.GetVertexGroup(); x != nil {
+		b.Groups = &event.Groups{
+			OfObject:   c.int32s("vertex_group.groups", x.GetGroups()),
+			Offsets:    c.int32s("vertex_group.offsets", x.GetOffsets()),
+			Position:   c.positions("vertex_group", x),
+			Covariance: c.covariance("vertex_group.covariance_m2", x.CovarianceM2),
+		}
+	}
+	if x := m.GetClusterPosition(); x != nil {
+		p := c.positions("cluster_position", x)
+		b.Clusters = &p
+	}
+	if x := m.GetPolarisation(); x != nil {
+		b.Polarisation = &event.Polarisation{
+			Linear:   c.float64s("polarisation.linear_degree", x.GetLinearDegree()),
+			PlaneRad: c.float64s("polarisation.plane_rad", x.GetPlaneRad()),
+			Circular: c.float64s("polarisation.circular_degree", x.GetCircularDegree()),
+		}
+	}
+	if err := c.faults.Err(); err != nil {
+		return nil, err
+	}
+	return b, b.Validate()
+}
+
+// columns reads byte columns and collects what is wrong with their lengths.
+type columns struct {
+	faults fault.List
+}
+
+// whole reports whether a column of the given bytes holds whole entries.
+func (c *columns) whole(field string, column []byte, size int) bool {
+	if len(column)%size == 0 {
+		return true
+	}
+	c.faults = append(c.faults, fault.New(fault.Invalid, field+".length", strconv.Itoa(len(column))+" bytes",
+		"a multiple of "+strconv.Itoa(size)+" bytes"))
+	return false
+}
+
+func (c *columns) float64s(field string, column []byte) []float64 {
+	const size = 8
+	if !c.whole(field, column, size) {
+		return nil
+	}
+	xs := make([]float64, len(column)/size)
+	for i := range xs {
+		xs[i] = math.Float64frombits(binary.LittleEndian.Uint64(column[size*i:]))
+	}
+	return xs
+}
+
+func (c *columns) int64s(field string, column []byte) []int64 {
+	const size = 8
+	if !c.whole(field, column, size) {
+		return nil
+	}
+	xs := make([]int64, len(column)/size)
+	for i := range xs {
+		xs[i] = int64(binary.LittleEndian.Uint64(column[size*i:])) //nolint:gosec // the bits are two's complement
+	}
+	return xs
+}
+
+func (c *columns) int32s(field string, column []byte) []int32 {
+	const size = 4
+	if !c.whole(field, column, size) {
+		return nil
+	}
+	xs := make([]int32, len(column)/size)
+	for i := range xs {
+		xs[i] = int32(binary.LittleEndian.Uint32(column[size*i:])) //nolint:gosec // the bits are two's complement
+	}
+	return xs
+}
+
+// points is any message with a column per coordinate of a point.
+type points interface {
+	GetXM() []byte
+	GetYM() []byte
+	GetZM() []byte
+}
+
+func (c *columns) positions(field string, m points) event.Positions {
+	return event.Positions{
+		X: c.float64s(field+".x_m", m.GetXM()),
+		Y: c.float64s(field+".y_m", m.GetYM()),
+		Z: c.float64s(field+".z_m", m.GetZM()),
+	}
+}
+
+// covariance reads an optional column; nil is absent, empty is not.
+func (c *columns) covariance(field string, column []byte) *event.Covariance {
+	if column == nil {
+		return nil
+	}
+	return &event.Covariance{Packed: c.float64s(field, column)}
+}
+
+// coordinates reads the coordinate set that the message carries, its columns in
+// the core's order.
+func (c *columns) coordinates(m *kinegatev1.EventBlock) event.Coordinates {
+	var x event.Coordinates
+	var raw [4][]byte
+	switch set := m.GetCoordinates().(type) {
+	case *kinegatev1.EventBlock_EnergyMomentum:
+		s := set.EnergyMomentum
+		x.Kind, raw = event.EnergyMomentum, [4][]byte{s.GetPxGev(), s.GetPyGev(), s.GetPzGev(), s.GetEnergyGev()}
+	case *kinegatev1.EventBlock_MomentumMass:
+		s := set.MomentumMass
+		x.Kind, raw = event.MomentumMass, [4][]byte{s.GetPxGev(), s.GetPyGev(), s.GetPzGev(), s.GetMassGev()}
+	case *kinegatev1.EventBlock_TransverseMomentum:
+		s := set.TransverseMomentum
+		x.Kind = event.TransverseMomentum
+		raw = [4][]byte{s.GetTransverseMomentumGev(), s.GetPseudorapidity(), s.GetPhiRad(), s.GetMassGev()}
+	case *kinegatev1.EventBlock_MomentumAngles:
+		s := set.MomentumAngles
+		x.Kind, raw = event.MomentumAngles, [4][]byte{s.GetMomentumGev(), s.GetThetaRad(), s.GetPhiRad()}
+	case *kinegatev1.EventBlock_MomentumSlopes:
+		s := set.MomentumSlopes
+		x.Kind, raw = event.MomentumSlopes, [4][]byte{s.GetMomentumGev(), s.GetSlopeX(), s.GetSlopeY()}
+	default:
+		c.faults = append(c.faults, fault.New(fault.Invalid, "coordinates", "absent", "one coordinate set"))
+		return x
+	}
+	for i := range x.Kind.Columns() {
+		x.Columns[i] = c.float64s(x.Kind.String()+"."+x.Kind.ColumnName(i), raw[i])
+	}
+	return x
+}
+
+// classes reads object classes; the core shares the numbers of the contract.
+func classes(column []byte) []event.Class {
+	cs := make([]event.Class, len(column))
+	for i, c := range column {
+		cs[i] = event.Class(c)
+	}
+	return cs
+}
