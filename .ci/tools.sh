@@ -1,3 +1,4 @@
+# shellcheck shell=bash
 # Pinned tools, installed once by name and version below one cache folder, outside go.mod.
 # Sourced by the scripts beside it: `need NAME` installs a tool when it is missing and sets
 # the variable NAME_BIN (upper case, - becomes _) to the folder with its program.
@@ -25,7 +26,7 @@ retry() {
 
 # install_go FOLDER PACKAGE@VERSION: builds a Go program into FOLDER.
 install_go() {
-  (cd / && GOBIN="$1" GOFLAGS= CGO_ENABLED=0 retry go install "$2")
+  (cd / && GOBIN="$1" GOFLAGS="" CGO_ENABLED=0 retry go install "$2")
 }
 
 # install_npm FOLDER PACKAGE@VERSION: installs an npm package that carries a program.

@@ -34,7 +34,7 @@ var complaint = regexp.MustCompile(`(?m)^(#|go: |package |\S+\.go:\d+).*$`)
 func goCommand(t *testing.T, environment []string, arguments ...string) (stdout, stderr string) {
 	t.Helper()
 
-	command := exec.CommandContext(t.Context(), "go", arguments...)
+	command := exec.CommandContext(t.Context(), "go", arguments...) //nolint:gosec // The arguments are the tests' own.
 	command.Dir = ".."
 	command.Env = append(command.Environ(), environment...)
 
