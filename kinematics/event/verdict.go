@@ -15,20 +15,15 @@ func (b Bits) Set(i int) { b[i>>3] |= 1 << (i & 7) }
 // Clear clears bit i.
 func (b Bits) Clear(i int) { b[i>>3] &^= 1 << (i & 7) }
 
-// EntryStatus says how the judging of one entry ended.
+// EntryStatus says how an entry came about. The numbers are those of the contract.
 type EntryStatus uint8
 
 // The states of an entry.
 const (
-	// Judged marks an entry that was judged in full.
-	Judged EntryStatus = iota
-	// FitNotConverged marks a fit that stopped short of its stated bound.
-	FitNotConverged
-	// BudgetUsedUp marks assignments left untried when the budget ended.
-	BudgetUsedUp
-	// NotFitted marks a fit that could not be tried: no covariance, or less
-	// measured than the constraints need.
-	NotFitted
+	// Accepted marks an assignment that passes every condition.
+	Accepted EntryStatus = iota + 1
+	// Rejected marks the best possible assignment where none passes.
+	Rejected
 )
 
 // VerdictBlock holds the verdicts on one Block, event for event.
