@@ -1,28 +1,25 @@
 package api
 
 import (
-	"encoding/binary"
-	"math"
+	"errors"
 	"strconv"
-
-	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 
 	"example.org/kinegate/kinematics/event"
 	"example.org/kinegate/kinematics/fault"
+	"example.org/kinegate/proto/column"
+	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 )
 
 // eventBlock converts the columns of a message to those of the core and checks
 // their structure. The error is a fault.List with the paths of the message.
-//
-// Columns may start at any address within the message, so numbers are put
-// together byte by byte instead of being viewed in place.
+// Statuses and classes have the same numbers in both.
 func eventBlock(m *kinegatev1.EventBlock) (*event.Block, error) {
 	c := &columns{}
 	b := &event.Block{
 		EventIDs:      c.int64s("event_ids", m.GetEventIds()),
 		RunNumber:     m.GetRunNumber(),
 		ObjectOffsets: c.int32s("object_offsets", m.GetObjectOffsets()),
-		Class:         classes(m.GetObjectClasses()),
+		Class:         column.Uint8s[event.Class](m.GetObjectClasses()),
 	}
 	b.Coordinates = c.coordinates(m)
 	if x := m.GetMeasuredMask(); x != nil {
@@ -78,49 +75,29 @@ type columns struct {
 	faults fault.List
 }
 
-// whole reports whether a column of the given bytes holds whole entries.
-func (c *columns) whole(field string, column []byte, size int) bool {
-	if len(column)%size == 0 {
-		return true
+// note keeps a length that does not fit.
+func (c *columns) note(field string, err error) {
+	if broken, ok := errors.AsType[*column.LengthError](err); ok {
+		c.faults = append(c.faults, fault.New(fault.Invalid, field+".length", strconv.Itoa(broken.Bytes)+" bytes",
+			"a multiple of "+strconv.Itoa(broken.Size)+" bytes"))
 	}
-	c.faults = append(c.faults, fault.New(fault.Invalid, field+".length", strconv.Itoa(len(column))+" bytes",
-		"a multiple of "+strconv.Itoa(size)+" bytes"))
-	return false
 }
 
-func (c *columns) float64s(field string, column []byte) []float64 {
-	const size = 8
-	if !c.whole(field, column, size) {
-		return nil
-	}
-	xs := make([]float64, len(column)/size)
-	for i := range xs {
-		xs[i] = math.Float64frombits(binary.LittleEndian.Uint64(column[size*i:]))
-	}
+func (c *columns) float64s(field string, raw []byte) []float64 {
+	xs, err := column.Float64s(raw)
+	c.note(field, err)
 	return xs
 }
 
-func (c *columns) int64s(field string, column []byte) []int64 {
-	const size = 8
-	if !c.whole(field, column, size) {
-		return nil
-	}
-	xs := make([]int64, len(column)/size)
-	for i := range xs {
-		xs[i] = int64(binary.LittleEndian.Uint64(column[size*i:])) //nolint:gosec // the bits are two's complement
-	}
+func (c *columns) int64s(field string, raw []byte) []int64 {
+	xs, err := column.Int64s(raw)
+	c.note(field, err)
 	return xs
 }
 
-func (c *columns) int32s(field string, column []byte) []int32 {
-	const size = 4
-	if !c.whole(field, column, size) {
-		return nil
-	}
-	xs := make([]int32, len(column)/size)
-	for i := range xs {
-		xs[i] = int32(binary.LittleEndian.Uint32(column[size*i:])) //nolint:gosec // the bits are two's complement
-	}
+func (c *columns) int32s(field string, raw []byte) []int32 {
+	xs, err := column.Int32s(raw)
+	c.note(field, err)
 	return xs
 }
 
@@ -140,11 +117,11 @@ func (c *columns) positions(field string, m points) event.Positions {
 }
 
 // covariance reads an optional column; nil is absent, empty is not.
-func (c *columns) covariance(field string, column []byte) *event.Covariance {
-	if column == nil {
+func (c *columns) covariance(field string, raw []byte) *event.Covariance {
+	if raw == nil {
 		return nil
 	}
-	return &event.Covariance{Packed: c.float64s(field, column)}
+	return &event.Covariance{Packed: c.float64s(field, raw)}
 }
 
 // coordinates reads the coordinate set that the message carries, its columns in
@@ -177,13 +154,4 @@ func (c *columns) coordinates(m *kinegatev1.EventBlock) event.Coordinates {
 		x.Columns[i] = c.float64s(x.Kind.String()+"."+x.Kind.ColumnName(i), raw[i])
 	}
 	return x
-}
-
-// classes reads object classes; the core shares the numbers of the contract.
-func classes(column []byte) []event.Class {
-	cs := make([]event.Class, len(column))
-	for i, c := range column {
-		cs[i] = event.Class(c)
-	}
-	return cs
 }
