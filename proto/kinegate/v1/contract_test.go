@@ -1,0 +1,280 @@
+package kinegatev1_test
+
+import (
+	"fmt"
+	"regexp"
+	"slices"
+	"strings"
+	"testing"
+
+	"google.golang.org/protobuf/proto"
+	"google.golang.org/protobuf/reflect/protodesc"
+	"google.golang.org/protobuf/reflect/protoreflect"
+	"google.golang.org/protobuf/reflect/protoregistry"
+	"google.golang.org/protobuf/types/descriptorpb"
+
+	_ "example.org/kinegate/proto/kinegate/v1"
+)
+
+// unitSuffixes lists the units that a field's name may end in.
+var unitSuffixes = []string{
+	"_gev", "_gev2", "_rad", "_m", "_m2", "_mm", "_s", "_ns", "_hz", "_barn", "_k", "_gv", "_per_m", "_kpc",
+}
+
+// withoutUnit lists the doubles and the bytes that carry no unit, by message and field, each
+// with the reason.
+var withoutUnit = map[string]string{
+	"CentreOfMass.beta":                         "speed over the speed of light",
+	"CentreOfMass.gamma":                        "energy over mass",
+	"CovarianceColumn.elements":                 "float64; each element has the product of two parameters' units",
+	"DescribeDecayResponse.surviving_fractions": "shares of the particles",
+	"EntryColumns.assignment_offsets":           "int32 rows",
+	"EntryColumns.assignments":                  "int16 objects of the event",
+	"EntryColumns.assignments_tried":            "int32 counts",
+	"EntryColumns.beam_rows":                    "int16 rows",
+	"EntryColumns.hypothesis_indices":           "int16 positions in the selection",
+	"EntryColumns.observable_offsets":           "int32 rows",
+	"EntryColumns.observables":                  "float64, each in the unit of the observable that the opening named",
+	"EntryColumns.offsets":                      "int32 rows",
+	"EntryColumns.statuses":                     "uint8 statuses",
+	"EntryColumns.weights":                      "float64 weights of beam candidates",
+	"EventBlock.event_ids":                      "int64 numbers of the caller",
+	"EventBlock.object_classes":                 "uint8 classes",
+	"EventBlock.object_offsets":                 "int32 rows",
+	"BeamColumns.offsets":                       "int32 rows",
+	"GroupBest.best":                            "int16 positions in the selection",
+	"HypothesisBits.accepted":                   "bits, one per event",
+	"MeasuredMaskColumn.masks":                  "uint8 bits",
+	"MomentumSlopesColumns.slope_x":             "float64 px over pz",
+	"MomentumSlopesColumns.slope_y":             "float64 py over pz",
+	"ParentMotion.beta":                         "speed over the speed of light",
+	"ParentMotion.gamma":                        "energy over mass",
+	"PolarisationColumns.circular_degree":       "float64 degree in [-1, 1]",
+	"PolarisationColumns.linear_degree":         "float64 degree in [0, 1]",
+	"SpeciesMaskColumn.masks":                   "uint8 bits",
+	"TimeWindow.weight":                         "weight of a beam candidate",
+	"TransverseMomentumColumns.pseudorapidity":  "float64, a logarithm of an angle's tangent",
+	"VerdictBlock.gate":                         "bits, one per event",
+	"VerdictBlock.statuses":                     "uint8 statuses",
+	"VertexGroupColumns.groups":                 "int32 numbers of groups",
+	"VertexGroupColumns.offsets":                "int32 rows",
+}
+
+// wholeNumbers lists the integers whose names look like counts and are none, with the reason.
+var wholeNumbers = map[string]string{
+	"InclusiveRemainder.charge_thirds": "a charge in thirds of the elementary charge",
+	"Particle.charge_thirds":           "a charge in thirds of the elementary charge",
+}
+
+// collective lists the repeated fields whose names are no plurals, with the reason.
+var collective = map[string]string{
+	"Condition.all_of":            "reads as the sentence it is",
+	"Condition.any_of":            "reads as the sentence it is",
+	"CoplanarityWindow.first":     "the products of the first side",
+	"CoplanarityWindow.second":    "the products of the second side",
+	"Hypothesis.record":           "what each verdict keeps a record of",
+	"InclusiveRemainder.lightest": "the lightest final state that fits",
+	"Reaction.initial":            "the initial state, one particle or two",
+}
+
+var (
+	digitWord = regexp.MustCompile(`(^|_)[0-9]`)
+	countName = regexp.MustCompile(`^(n|num|number_of)_|[^s]s$`)
+)
+
+// contract is the rules with their lists, so that the self-test can bring its own.
+type contract struct {
+	withoutUnit, wholeNumbers, collective map[string]string
+	used                                  map[string]bool
+}
+
+// listed tells whether a list excuses a field, and notes that it did.
+func (c *contract) listed(list map[string]string, key string) bool {
+	_, ok := list[key]
+	c.used[key] = c.used[key] || ok
+
+	return ok
+}
+
+// cutUnit splits a unit off a field's name.
+func cutUnit(name string) (base string, ok bool) {
+	for _, suffix := range unitSuffixes {
+		if base, ok = strings.CutSuffix(name, suffix); ok {
+			return base, true
+		}
+	}
+
+	return name, false
+}
+
+// field returns what is wrong with one field.
+func (c *contract) field(field protoreflect.FieldDescriptor) []string {
+	name := string(field.Name())
+	key := string(field.Parent().Name()) + "." + name
+	base, hasUnit := cutUnit(name)
+
+	var faults []string
+
+	add := func(text string) { faults = append(faults, key+" "+text) }
+
+	switch field.Kind() {
+	case protoreflect.DoubleKind, protoreflect.BytesKind:
+		if !hasUnit && !c.listed(c.withoutUnit, key) {
+			add("ends in no unit and stands in no list")
+		}
+	case protoreflect.FloatKind:
+		add("is a float of 32 bits")
+	case protoreflect.Uint32Kind, protoreflect.Uint64Kind, protoreflect.Fixed32Kind, protoreflect.Fixed64Kind:
+		add("is unsigned")
+	case protoreflect.Int32Kind, protoreflect.Int64Kind:
+		if !field.IsList() && countName.MatchString(name) && !hasUnit && !c.listed(c.wholeNumbers, key) {
+			add("is a count and does not end in _count")
+		}
+	case protoreflect.BoolKind, protoreflect.EnumKind, protoreflect.StringKind, protoreflect.MessageKind,
+		protoreflect.GroupKind, protoreflect.Sint32Kind, protoreflect.Sint64Kind, protoreflect.Sfixed32Kind,
+		protoreflect.Sfixed64Kind:
+	}
+
+	if field.IsList() && !strings.HasSuffix(base, "s") && !c.listed(c.collective, key) {
+		add("is repeated and no plural")
+	}
+
+	if digitWord.MatchString(name) {
+		add("has a word that starts with a digit")
+	}
+
+	return faults
+}
+
+// messages returns what is wrong with the messages and all that they contain, and the number of fields.
+func (c *contract) messages(all protoreflect.MessageDescriptors) (faults []string, fields int) {
+	for i := range all.Len() {
+		message := all.Get(i)
+		for j := range message.Fields().Len() {
+			fields++
+
+			faults = append(faults, c.field(message.Fields().Get(j))...)
+		}
+
+		inner, count := c.messages(message.Messages())
+		faults = append(faults, inner...)
+		fields += count
+	}
+
+	return faults, fields
+}
+
+func TestContractNames(t *testing.T) {
+	t.Parallel()
+
+	rules := contract{withoutUnit, wholeNumbers, collective, map[string]bool{}}
+	fields := 0
+
+	protoregistry.GlobalFiles.RangeFilesByPackage("kinegate.v1", func(file protoreflect.FileDescriptor) bool {
+		faults, count := rules.messages(file.Messages())
+		for _, fault := range faults {
+			t.Errorf("%s: %s", file.Path(), fault)
+		}
+
+		fields += count
+
+		return true
+	})
+
+	if fields == 0 {
+		t.Fatal("no field was found")
+	}
+
+	for _, list := range []map[string]string{withoutUnit, wholeNumbers, collective} {
+		for key := range list {
+			if !rules.used[key] {
+				t.Errorf("%s stands in a list and needs no excuse", key)
+			}
+		}
+	}
+
+	t.Logf("%d fields", fields)
+}
+
+// seededFile describes a file of one message whose fields are given as text: label, type, name.
+func seededFile(t *testing.T, fields ...string) protoreflect.FileDescriptor {
+	t.Helper()
+
+	message := &descriptorpb.DescriptorProto{Name: proto.String("Seeded")}
+
+	for i, text := range fields {
+		part := strings.Fields(text)
+
+		kind, ok := descriptorpb.FieldDescriptorProto_Type_value["TYPE_"+strings.ToUpper(part[1])]
+		if !ok {
+			t.Fatalf("no type %q", part[1])
+		}
+
+		label := descriptorpb.FieldDescriptorProto_LABEL_OPTIONAL
+		if part[0] == "repeated" {
+			label = descriptorpb.FieldDescriptorProto_LABEL_REPEATED
+		}
+
+		message.Field = append(message.Field, &descriptorpb.FieldDescriptorProto{
+			Name:   proto.String(part[2]),
+			Number: proto.Int32(int32(i + 1)), //nolint:gosec // A dozen at most.
+			Type:   descriptorpb.FieldDescriptorProto_Type(kind).Enum(),
+			Label:  label.Enum(),
+		})
+	}
+
+	file, err := protodesc.NewFile(&descriptorpb.FileDescriptorProto{
+		Name:        proto.String("seeded.proto"),
+		Package:     proto.String("seeded.v1"),
+		Syntax:      proto.String("proto3"),
+		MessageType: []*descriptorpb.DescriptorProto{message},
+	}, nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+
+	return file
+}
+
+func TestContractNamesSeeOffences(t *testing.T) {
+	t.Parallel()
+
+	bad := []string{
+		"single double mass", "single double energy_mev", "single bytes momentum", "single float width_gev",
+		"single uint32 row", "single uint64 id", "single fixed32 word", "single int64 events", "single int32 num_events",
+		"single int32 n_photons", "repeated double length_m", "repeated string product",
+		"single string pair_4momentum",
+	}
+
+	good := []string{
+		"single double mass_gev", "single bytes momentum_gev", "single double share", "single int64 event_count",
+		"single int32 charge_thirds", "repeated double energies_gev", "repeated string products", "repeated string all_of",
+		"single int64 sequence", "single int64 budget_ns", "single string energy4", "single bool is_open",
+	}
+
+	rules := contract{
+		withoutUnit:  map[string]string{"Seeded.share": "a fraction"},
+		wholeNumbers: map[string]string{"Seeded.charge_thirds": "a charge"},
+		collective:   map[string]string{"Seeded.all_of": "a sentence"},
+		used:         map[string]bool{},
+	}
+
+	faults, fields := rules.messages(seededFile(t, slices.Concat(bad, good)...).Messages())
+	if fields != len(bad)+len(good) {
+		t.Errorf("%d fields were read, want %d", fields, len(bad)+len(good))
+	}
+
+	all := strings.Join(faults, "\n") + "\n"
+
+	for _, text := range bad {
+		if name := strings.Fields(text)[2]; !strings.Contains(all, fmt.Sprintf("Seeded.%s ", name)) {
+			t.Errorf("%q was not seen", text)
+		}
+	}
+
+	for _, text := range good {
+		if name := strings.Fields(text)[2]; strings.Contains(all, fmt.Sprintf("Seeded.%s ", name)) {
+			t.Errorf("%q was reported: %s", text, all)
+		}
+	}
+}
