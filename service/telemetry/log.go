@@ -1,0 +1,66 @@
+package telemetry
+
+import (
+	"io"
+	"time"
+
+	"github.com/rs/zerolog"
+)
+
+// How many lines of finished calls are written. Above the burst one in a hundred
+// lines of calls that went well is kept, and none of those that failed: metrics
+// count every call, lines are for examples.
+const (
+	burstLines  = 100
+	burstPeriod = time.Second
+	keepOneIn   = 100
+)
+
+// NewLogger returns a logger that writes JSON lines to w, from the given level up.
+// The level is one of debug, info, warn, error.
+func NewLogger(w io.Writer, level string) (zerolog.Logger, error) {
+	parsed, err := zerolog.ParseLevel(level)
+	if err != nil {
+		return zerolog.Nop(), err
+	}
+	return zerolog.New(w).Level(parsed).With().Timestamp().Logger(), nil
+}
+
+// CallLog writes one line for each finished call.
+type CallLog struct {
+	well, failed zerolog.Logger
+}
+
+// NewCallLog returns a CallLog on a logger; dropped is called for each line of a
+// failed call that was held back, and may be nil.
+func NewCallLog(log zerolog.Logger, dropped func()) *CallLog {
+	if dropped == nil {
+		dropped = func() {}
+	}
+	return &CallLog{
+		well: log.Sample(&zerolog.BurstSampler{
+			Burst: burstLines, Period: burstPeriod, NextSampler: &zerolog.BasicSampler{N: keepOneIn},
+		}),
+		failed: log.Sample(&zerolog.BurstSampler{
+			Burst: burstLines, Period: burstPeriod, NextSampler: held(dropped),
+		}),
+	}
+}
+
+// Well starts the line of a call that was answered.
+func (c *CallLog) Well() *zerolog.Event { return c.well.Info() }
+
+// Refused starts the line of a call that its caller must change or repeat.
+func (c *CallLog) Refused() *zerolog.Event { return c.failed.Warn() }
+
+// Failed starts the line of a call that met a fault of ours.
+func (c *CallLog) Failed() *zerolog.Event { return c.failed.Error() }
+
+// held is a sampler that keeps nothing and counts.
+type held func()
+
+// Sample counts a line held back.
+func (h held) Sample(zerolog.Level) bool {
+	h()
+	return false
+}
