@@ -1,0 +1,203 @@
+package generation
+
+import (
+	"math"
+	"strconv"
+
+	"example.org/kinegate/kinematics/fault"
+	"example.org/kinegate/kinematics/momentum"
+	"example.org/kinegate/kinematics/num"
+	"example.org/kinegate/kinematics/num/random"
+)
+
+// MaxBodies is the largest number of particles of one production or decay.
+const MaxBodies = 12
+
+// PhaseSpace draws points of n-body phase space by a chain of two-body splits:
+// the total splits into the last particle and the rest, the rest splits in
+// turn, down to the first two. With n-2 sorted uniform numbers r_k the rest of
+// the first k particles has the mass
+//
+//	M_k = m_1 + ... + m_k + r_k T,  T = M - sum m,
+//
+// every split is isotropic in its rest frame, and the point's weight
+//
+//	w = pi^(n-1) 2^(n-2)/(n-2)! T^(n-2)/M p_2 p_3 ... p_n
+//
+// with the momenta p_k of the splits is its density: the mean weight is the
+// volume, the integral of prod d3p/(2E) delta4(P - sum p), in GeV^(2n-4).
+//
+// Source: F. James, "Monte Carlo phase space", CERN 68-15 (1968), in the
+// normalisation of E. Byckling and K. Kajantie, "Particle kinematics" (1973).
+//
+// A PhaseSpace carries its working memory, so each goroutine needs its own.
+type PhaseSpace struct {
+	n int
+	// mass of particle k, and sum of the masses 0 to k.
+	mass, sum [MaxBodies]float64
+	// rest is the mass of particles 0 to k together, split is the momentum of
+	// particle k against particles 0 to k-1 in their common rest frame.
+	rest, split [MaxBodies]float64
+	constant    float64
+}
+
+// NewPhaseSpace returns the phase space of particles with the given masses in
+// GeV: 2 to MaxBodies of them, each finite and not negative.
+func NewPhaseSpace(masses []float64) (*PhaseSpace, error) {
+	if len(masses) < 2 || len(masses) > MaxBodies {
+		return nil, fault.New(fault.Invalid, "masses.length", strconv.Itoa(len(masses)),
+			"2 to "+strconv.Itoa(MaxBodies)).In("generation.NewPhaseSpace")
+	}
+	for i, m := range masses {
+		if !(m >= 0 && m <= math.MaxFloat64) {
+			return nil, fault.Number("masses["+strconv.Itoa(i)+"]", m, ">= 0 and finite").In("generation.NewPhaseSpace")
+		}
+	}
+	ps := phaseSpaceOf(len(masses))
+	ps.setMasses(masses)
+	return &ps, nil
+}
+
+// phaseSpaceOf returns the phase space of n particles whose masses are still
+// to be set.
+func phaseSpaceOf(n int) PhaseSpace {
+	constant := math.Pi
+	for k := 2; k < n; k++ {
+		constant *= 2 * math.Pi / float64(k-1)
+	}
+	return PhaseSpace{n: n, constant: constant}
+}
+
+func (ps *PhaseSpace) setMasses(masses []float64) {
+	sum := 0.0
+	for k, m := range masses {
+		sum += m
+		ps.mass[k], ps.sum[k] = m, sum
+	}
+	ps.rest[0] = ps.mass[0]
+}
+
+// Draw draws a point for the total four-momentum of mass m > 0, writes the
+// particles' four-momenta to out, which has room for all of them, and returns
+// the weight. Where m is not above the sum of the masses the weight is 0 and
+// out is left alone. It draws n-2 uniform numbers and then two for each split.
+//
+// Accuracy: every momentum is on its mass shell to 4 x 2^-53 E^2, and the sums
+// are those of the total to 2n x 2^-52 of the largest energy.
+func (ps *PhaseSpace) Draw(s *random.Stream, total momentum.Four, m float64, out []momentum.Four) float64 {
+	w := ps.drawMasses(s, m)
+	if w > 0 {
+		ps.place(s, total, m, out, nil)
+	}
+	return w
+}
+
+// drawMasses draws the masses of the rests for a total mass m and returns the
+// weight.
+func (ps *PhaseSpace) drawMasses(s *random.Stream, m float64) float64 {
+	n := ps.n
+	t := m - ps.sum[n-1]
+	var r [MaxBodies]float64
+	for k := 1; k < n-1; k++ { // drawn and sorted by insertion
+		u := s.Uniform()
+		i := k
+		for i > 1 && r[i-1] > u {
+			r[i] = r[i-1]
+			i--
+		}
+		r[i] = u
+	}
+	if !(t > 0) {
+		return 0
+	}
+	r[n-1] = 1
+	ps.rest[n-1] = m
+	w := ps.constant / m
+	for k := 1; k < n; k++ {
+		// The excess of each split is its own quantity, never a difference of
+		// masses that both hold the sums.
+		excess := (r[k] - r[k-1]) * t
+		if k < n-1 {
+			ps.rest[k] = ps.sum[k] + float64(r[k]*t)
+			w *= t
+		}
+		p := splitMomentum(excess, ps.rest[k], ps.rest[k-1], ps.mass[k])
+		ps.split[k] = p
+		w *= p
+	}
+	return w
+}
+
+// splitMomentum is the momentum of the two parts a, b of a system of mass m
+// with the excess energy q = m - a - b >= 0, from the Kallen function in its
+// four factors, none of which is a difference:
+//
+//	p = sqrt(q (q + 2a) (q + 2b) (m + a + b)) / (2m)
+func splitMomentum(q, m, a, b float64) float64 {
+	return math.Sqrt(q*(q+2*a)*(q+2*b)*(m+a+b)) / (2 * m)
+}
+
+// ceiling is an upper bound of the weight at a total mass m: every split has at
+// most the whole excess energy, and its momentum grows with that and falls with
+// the masses of the parts.
+func (ps *PhaseSpace) ceiling(m float64) float64 {
+	n := ps.n
+	t := m - ps.sum[n-1]
+	if !(t > 0) {
+		return 0
+	}
+	w := ps.constant / m
+	for k := 1; k < n; k++ {
+		if k < n-1 {
+			w *= t
+		}
+		w *= splitMomentum(t, ps.sum[k]+t, ps.sum[k-1], ps.mass[k])
+	}
+	return w
+}
+
+// place draws the directions and writes the four-momenta for the masses that
+// drawMasses left. Where first is given it is the direction of the last
+// particle in the total's rest frame, and no direction is drawn for that split.
+func (ps *PhaseSpace) place(s *random.Stream, total momentum.Four, m float64, out []momentum.Four, first *momentum.Three) {
+	px, py, pz, e := total.P.X, total.P.Y, total.P.Z, total.E
+	for k := ps.n - 1; k > 0; k-- {
+		p, mass := ps.split[k], ps.mass[k]
+		var q momentum.Three
+		if k == ps.n-1 && first != nil {
+			q = first.Scale(p)
+		} else {
+			q = isotropic(s, p)
+		}
+		// Boost of q with the energy es along the total's own motion:
+		// q + P ((P.q)/(E + M) + es)/M.
+		es := math.Sqrt(float64(p*p) + float64(mass*mass))
+		along := float64(px*q.X) + float64(py*q.Y) + float64(pz*q.Z)
+		f := (along/(e+m) + es) / m
+		x, y, z := q.X+float64(px*f), q.Y+float64(py*f), q.Z+float64(pz*f)
+		out[k] = momentum.Four{
+			P: momentum.Three{X: x, Y: y, Z: z},
+			E: shell(x, y, z, mass),
+		}
+		// The rest takes what is left, so that momentum is conserved to the
+		// last bit of the larger term.
+		px, py, pz = px-x, py-y, pz-z
+		m = ps.rest[k-1]
+		e = shell(px, py, pz, m)
+	}
+	out[0] = momentum.Four{P: momentum.Three{X: px, Y: py, Z: pz}, E: e}
+}
+
+// shell is the energy of a momentum on the shell of mass m.
+func shell(x, y, z, m float64) float64 {
+	return math.Sqrt(float64(x*x) + float64(y*y) + (float64(z*z) + float64(m*m)))
+}
+
+// isotropic draws a vector of length p in a random direction, from two uniform
+// numbers: with cos theta = 2u - 1, sin theta = 2 sqrt(u (1 - u)).
+func isotropic(s *random.Stream, p float64) momentum.Three {
+	u := s.Uniform()
+	sin, cos := num.Sincos(2 * math.Pi * s.Uniform())
+	transverse := 2 * p * math.Sqrt(u*(1-u))
+	return momentum.Three{X: transverse * cos, Y: transverse * sin, Z: p * (u - (1 - u))}
+}
