@@ -3,6 +3,7 @@ package quantity
 import (
 	"math"
 	"strconv"
+	"strings"
 )
 
 // Format writes a quantity with the given number of significant digits, in the
@@ -47,13 +48,12 @@ func unitFor(x float64, dimension Dimension) unit {
 // number writes x with significant digits, without an exponent where the number
 // stays readable.
 func number(x float64, digits int) string {
-	switch size := math.Abs(x); {
-	case x == 0:
-		return "0"
-	case size >= 1e6 || size < 1e-3:
-		return strconv.FormatFloat(x, 'e', digits-1, 64)
-	default:
-		whole := int(math.Floor(math.Log10(size))) + 1
-		return strconv.FormatFloat(x, 'f', max(digits-whole, 0), 64)
+	scientific := strconv.FormatFloat(x, 'e', digits-1, 64)
+	// The exponent of the rounded number: 9.999 with two digits is 10.
+	_, after, found := strings.Cut(scientific, "e")
+	exponent, err := strconv.Atoi(after)
+	if !found || err != nil || exponent >= 6 || exponent < -3 {
+		return scientific
 	}
+	return strconv.FormatFloat(x, 'f', max(digits-1-exponent, 0), 64)
 }
