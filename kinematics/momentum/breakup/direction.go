@@ -1,0 +1,53 @@
+package breakup
+
+import (
+	"math"
+
+	"example.org/kinegate/kinematics/num"
+)
+
+// Direction is a polar angle theta* held as the squares of the cosine and sine of its
+// half, each with its own digits: the first is (1+cos)/2, which loses all digits
+// backward if formed from the cosine, the second (1-cos)/2, which loses them forward.
+type Direction struct {
+	// Fore is cos^2(theta*/2) and Aft is sin^2(theta*/2).
+	Fore, Aft num.DD
+}
+
+// Along returns the direction 0.
+func Along() Direction { return Direction{Fore: num.FromFloat(1)} }
+
+// Against returns the direction pi.
+func Against() Direction { return Direction{Aft: num.FromFloat(1)} }
+
+// AtAngle returns the direction at an angle within 0..pi. The double next to pi
+// stands for pi, as it does for atan2.
+func AtAngle(theta float64) Direction {
+	if theta == math.Pi {
+		return Against()
+	}
+	sin, cos := num.FromFloat(theta / 2).Sincos()
+	return Direction{Fore: cos.Square(), Aft: sin.Square()}
+}
+
+// AtCosine returns the direction at a cosine within -1..1, exactly.
+func AtCosine(cosine float64) Direction {
+	return Direction{Fore: num.Sum2(1, cosine).Scale(-1), Aft: num.Sum2(1, -cosine).Scale(-1)}
+}
+
+// Opposite returns the direction turned by pi.
+func (d Direction) Opposite() Direction { return Direction{Fore: d.Aft, Aft: d.Fore} }
+
+// Cosine returns cos(theta*).
+func (d Direction) Cosine() num.DD { return d.Fore.Sub(d.Aft) }
+
+// Sine returns sin(theta*).
+func (d Direction) Sine() num.DD { return d.Fore.Mul(d.Aft).Sqrt().Scale(1) }
+
+// Angle returns theta* in radians, within 4e-16 relative.
+func (d Direction) Angle() float64 {
+	return 2 * num.Atan2(d.Aft.Sqrt().Float(), d.Fore.Sqrt().Float())
+}
+
+// Forward reports whether the direction is nearer to 0 than to pi.
+func (d Direction) Forward() bool { return d.Fore.Cmp(d.Aft) >= 0 }
