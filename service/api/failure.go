@@ -91,6 +91,16 @@ func In(prefix string, err error) *Failure {
 	return &f
 }
 
+// atField returns the failure with one field path in place of the core's names.
+func atField(field string, f *Failure) *Failure {
+	c := *f
+	c.Violations = append([]Violation(nil), f.Violations...)
+	for i := range c.Violations {
+		c.Violations[i].Field = field
+	}
+	return &c
+}
+
 // Error returns the message.
 func (f *Failure) Error() string { return string(f.Reason) + ": " + f.Message }
 

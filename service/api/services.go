@@ -4,11 +4,10 @@ import (
 	"time"
 
 	"google.golang.org/grpc"
-)
 
-// NumericsVersion is raised by any change of the bits of an event, a fit or a
-// verdict. It is part of every selection digest.
-const NumericsVersion = 1
+	"example.org/kinegate/kinematics/particle"
+	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+)
 
 // Caution is what every user of the program should have read.
 const Caution = "kinegate is a planning and selection tool, never a safety system: no interlock, " +
@@ -20,6 +19,10 @@ const Caution = "kinegate is a planning and selection tool, never a safety syste
 type Deps struct {
 	// Version is the version of the program.
 	Version string
+	// Table is the particle table; the standard one if nil.
+	Table *particle.Table
+	// Library holds the selections that callers may name; an empty one if nil.
+	Library *Library
 	// Limits are the sizes to hold callers to.
 	Limits Limits
 	// Now tells the time, for latency budgets and heartbeats; time.Now if nil.
@@ -58,22 +61,42 @@ type StreamObserver interface {
 
 // Services are the rpc services of one server.
 type Services struct {
-	deps Deps
+	deps      Deps
+	particle  *particleService
+	selection *selectionService
 }
 
 // New returns the services.
-func New(deps Deps) *Services {
+func New(deps Deps) (*Services, error) {
+	standard, err := particle.New()
+	if err != nil {
+		return nil, err
+	}
+	if deps.Table == nil {
+		deps.Table = standard
+	}
+	if deps.Library == nil {
+		deps.Library = NewLibrary(deps.Table)
+	}
 	if deps.Now == nil {
 		deps.Now = time.Now
 	}
 	if deps.Observer == nil {
 		deps.Observer = silent{}
 	}
-	return &Services{deps: deps}
+	return &Services{
+		deps:      deps,
+		particle:  newParticleService(deps.Table, standard),
+		selection: newSelectionService(deps),
+	}, nil
 }
 
-// Register adds every service to a server.
-func (s *Services) Register(_ grpc.ServiceRegistrar) {}
+// Register adds every service to a server. Several servers may share them.
+func (s *Services) Register(r grpc.ServiceRegistrar) {
+	kinegatev1.RegisterParticleServiceServer(r, s.particle)
+	kinegatev1.RegisterSelectionServiceServer(r, s.selection)
+	kinegatev1.RegisterInfoServiceServer(r, &infoService{deps: s.deps})
+}
 
 // silent is the observer that does nothing.
 type silent struct{}
