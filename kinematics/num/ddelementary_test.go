@@ -1,9 +1,11 @@
 package num
 
 import (
+	"maps"
 	"math"
 	"math/big"
 	"math/rand/v2"
+	"slices"
 	"testing"
 )
 
@@ -40,11 +42,11 @@ func doubleDoubles() map[string]struct {
 		limit float64
 		f     func(x, y DD) DD
 	}{
-		"exp": {-96, one(ExpDD)}, "expm1": {-96, one(Expm1DD)},
-		"log": {-94, one(LogDD)}, "log1p": {-94, one(Log1pDD)},
-		"sin": {-96, one(SinDD)}, "cos": {-96, one(CosDD)}, "tan": {-95, one(TanDD)},
-		"asin": {-93, one(AsinDD)}, "acos": {-93, one(AcosDD)}, "atan": {-94, one(AtanDD)},
-		"asinh": {-92, one(AsinhDD)}, "atanh": {-92, one(AtanhDD)}, "atan2": {-94, Atan2DD},
+		"exp": {-96, one(DD.Exp)}, "expm1": {-96, one(DD.Expm1)},
+		"log": {-98, one(DD.Log)}, "log1p": {-98, one(DD.Log1p)},
+		"sin": {-96, one(DD.Sin)}, "cos": {-96, one(DD.Cos)}, "tan": {-95, one(DD.Tan)},
+		"asin": {-93, one(DD.Asin)}, "acos": {-93, one(DD.Acos)}, "atan": {-94, one(DD.Atan)},
+		"asinh": {-92, one(DD.Asinh)}, "atanh": {-92, one(DD.Atanh)}, "atan2": {-94, DD.Atan2},
 	}
 }
 
@@ -124,7 +126,8 @@ func TestElementaryAgainstDoubleDouble(t *testing.T) {
 		"atanh": func() (float64, float64) { return 2*random.Float64() - 1, 0 },
 	}
 	precise, functions := doubleDoubles(), doubles()
-	for name, at := range draw {
+	for _, name := range slices.Sorted(maps.Keys(draw)) {
+		at := draw[name]
 		worst, worstX, worstY := 0.0, 0.0, 0.0
 		for range n {
 			x, y := at()

@@ -2,18 +2,25 @@ package num
 
 import "math"
 
-// ExpDD returns e^x for |x| <= 700 within 2^-96 relative; beyond that range it
-// rounds to 0 or overflows as Exp does.
-func ExpDD(x DD) DD {
+// Exp returns e^x for |x| <= 700 within 2^-96 relative; beyond that range it
+// rounds as the function Exp does.
+func (x DD) Exp() DD {
+	if !(math.Abs(x.Hi) <= 700) {
+		return FromFloat(Exp(x.Hi))
+	}
 	k, reduced := reduceLn2(x)
 	return expm1Reduced(reduced).AddFloat(1).Scale(k)
 }
 
-// Expm1DD returns e^x - 1 for -700 <= x <= 700 within 2^-96 relative, also for small x.
+// Expm1 returns e^x - 1 for |x| <= 700 within 2^-96 relative, also for small x; beyond
+// that range it rounds as the function Expm1 does.
 //
 // With x = k ln2 + r, |r| <= ln2/2, the answer is 2^k (1 + expm1 r) - 1; for k = 0
 // nothing is subtracted.
-func Expm1DD(x DD) DD {
+func (x DD) Expm1() DD {
+	if !(math.Abs(x.Hi) <= 700) {
+		return FromFloat(Expm1(x.Hi))
+	}
 	k, reduced := reduceLn2(x)
 	m := expm1Reduced(reduced)
 	if k == 0 {
@@ -52,64 +59,30 @@ func expm1Reduced(r DD) DD {
 	return m
 }
 
-// LogDD returns the natural logarithm of x > 0 within 2^-94 relative, also near 1.
-// Special cases: 0 gives -Inf, x < 0 gives NaN.
-func LogDD(x DD) DD {
-	if !(x.Hi > 0) || math.IsInf(x.Hi, 1) {
-		return FromFloat(Log(x.Hi))
-	}
-	if x.Hi > 0.5 && x.Hi < 2 {
-		return Log1pDD(x.SubFloat(1))
-	}
-	// With x = 2^e f, log x = e ln2 + log1p(f-1) with sqrt(1/2) <= f < sqrt(2).
-	f, e := math.Frexp(x.Hi)
-	if f < math.Sqrt2/2 {
-		e--
-	}
-	rest := Log1pDD(x.Scale(-e).SubFloat(1))
-	k := float64(e)
-	return Prod2(k, Ln2().Hi).Add(Prod2(k, Ln2().Lo)).Add(rest)
-}
-
-// Log1pDD returns log(1+x) for x > -1 within 2^-94 relative, also for small x.
-// Special cases: -1 gives -Inf, x < -1 gives NaN.
-//
-// One Newton step from the double y: with d = (x - expm1 y)/(1 + expm1 y), which is at
-// most 2^-51 |y| or so, log(1+x) = y + log1p(d) = y + d - d^2/2 up to d^3.
-func Log1pDD(x DD) DD {
-	y := Log1p(x.Hi)
-	if x.Hi == 0 || math.IsInf(y, 0) || math.IsNaN(y) {
-		return FromFloat(y)
-	}
-	m := Expm1DD(FromFloat(y))
-	d := x.Sub(m).Div(m.AddFloat(1))
-	return d.SubFloat(float64(d.Hi*d.Hi) / 2).AddFloat(y)
-}
-
-// AsinhDD returns the inverse hyperbolic sine of |x| <= 1e150 within 2^-92 relative:
+// Asinh returns the inverse hyperbolic sine of |x| <= 1e150 within 2^-92 relative:
 //
 //	asinh x = log1p(x + x^2/(1 + sqrt(1+x^2))), odd in x.
-func AsinhDD(x DD) DD {
+func (x DD) Asinh() DD {
 	if x.Hi < 0 {
-		return AsinhDD(x.Neg()).Neg()
+		return x.Neg().Asinh().Neg()
 	}
 	square := x.Square()
 	root := square.AddFloat(1).Sqrt()
-	return Log1pDD(x.Add(square.Div(root.AddFloat(1))))
+	return x.Add(square.Div(root.AddFloat(1))).Log1p()
 }
 
-// AtanhDD returns the inverse hyperbolic tangent of |x| < 1 within 2^-92 relative:
+// Atanh returns the inverse hyperbolic tangent of |x| < 1 within 2^-92 relative:
 //
 //	atanh x = log1p(2x/(1-x))/2, odd in x.
 //
 // Special cases: +-1 gives +-Inf, |x| > 1 gives NaN.
-func AtanhDD(x DD) DD {
+func (x DD) Atanh() DD {
 	if x.Hi < 0 {
-		return AtanhDD(x.Neg()).Neg()
+		return x.Neg().Atanh().Neg()
 	}
 	rest := x.Neg().AddFloat(1)
 	if !(rest.Sign() > 0) {
 		return FromFloat(Atanh(x.Hi))
 	}
-	return Log1pDD(x.Scale(1).Div(rest)).Scale(-1)
+	return x.Scale(1).Div(rest).Log1p().Scale(-1)
 }

@@ -10,10 +10,6 @@ import "math"
 // far below the rounding of the sum itself.
 const atanhTerms = 21
 
-// ln2DD returns the natural logarithm of 2 with relative error below 2^-108. Both
-// words are the rounded decimals of 0.6931471805599453094172321214581765680755...
-func ln2DD() DD { return DD{0x1.62e42fefa39efp-1, 0x1.abc9e3b39803fp-56} }
-
 // Log returns the natural logarithm of x with relative error below 2^-98.
 //
 //	x = 2^e m, m in [sqrt(1/2), sqrt(2)): log(x) = e ln 2 + 2 atanh((m - 1)/(m + 1))
@@ -43,7 +39,7 @@ func (x DD) Log() DD {
 	if exponent == 0 {
 		return mantissa
 	}
-	return ln2DD().MulFloat(float64(exponent)).Add(mantissa)
+	return Ln2().MulFloat(float64(exponent)).Add(mantissa)
 }
 
 // Log1p returns log(1 + w) with relative error below 2^-98, also for small w.

@@ -2,9 +2,9 @@ package num
 
 import "math"
 
-// SincosDD returns the sine and cosine of x in radians, |x| <= 2^30, each within
+// Sincos returns the sine and cosine of x in radians, |x| <= 2^30, each within
 // 2^-96 relative, also near their zeros. Beyond that range both are NaN.
-func SincosDD(x DD) (sin, cos DD) {
+func (x DD) Sincos() (sin, cos DD) {
 	if !(math.Abs(x.Hi) <= 0x1p30) {
 		return FromFloat(math.NaN()), FromFloat(math.NaN())
 	}
@@ -22,21 +22,21 @@ func SincosDD(x DD) (sin, cos DD) {
 	}
 }
 
-// SinDD returns the sine of x with the domain and accuracy of SincosDD.
-func SinDD(x DD) DD {
-	s, _ := SincosDD(x)
+// Sin returns the sine of x with the domain and accuracy of Sincos.
+func (x DD) Sin() DD {
+	s, _ := x.Sincos()
 	return s
 }
 
-// CosDD returns the cosine of x with the domain and accuracy of SincosDD.
-func CosDD(x DD) DD {
-	_, c := SincosDD(x)
+// Cos returns the cosine of x with the domain and accuracy of Sincos.
+func (x DD) Cos() DD {
+	_, c := x.Sincos()
 	return c
 }
 
-// TanDD returns the tangent of x with the domain of SincosDD, within 2^-95 relative.
-func TanDD(x DD) DD {
-	s, c := SincosDD(x)
+// Tan returns the tangent of x with the domain of Sincos, within 2^-95 relative.
+func (x DD) Tan() DD {
+	s, c := x.Sincos()
 	return s.Div(c)
 }
 
@@ -83,7 +83,7 @@ func cosReduced(r DD) DD {
 	return sum.Mul(z).AddFloat(1)
 }
 
-// Atan2DD returns the angle of the point (x, y) from the x axis within -pi..pi,
+// Atan2 returns the angle of the point (x, y) from the x axis within -pi..pi,
 // within 2^-94 relative.
 //
 // One Newton step from the double t: sin(angle - t) = (y cos t - x sin t)/hypot(x, y)
@@ -91,7 +91,7 @@ func cosReduced(r DD) DD {
 //
 // Domain: x, y 0 or within 1e-100..1e100 in magnitude. Special cases: those of
 // Atan2 for a zero, infinite or NaN argument, with pi and pi/2 to two words.
-func Atan2DD(y, x DD) DD {
+func (y DD) Atan2(x DD) DD {
 	t := Atan2(y.Hi, x.Hi)
 	switch {
 	case math.IsNaN(t) || math.IsInf(x.Hi, 0) || math.IsInf(y.Hi, 0):
@@ -104,21 +104,21 @@ func Atan2DD(y, x DD) DD {
 	case x.Hi == 0:
 		return withSign(HalfPi(), t)
 	}
-	s, c := SincosDD(FromFloat(t))
+	s, c := FromFloat(t).Sincos()
 	length := x.Square().Add(y.Square()).Sqrt()
 	return y.Mul(c).Sub(x.Mul(s)).Div(length).AddFloat(t)
 }
 
-// AtanDD returns the arc tangent of |x| <= 1e100 within 2^-94 relative.
-func AtanDD(x DD) DD { return Atan2DD(x, FromFloat(1)) }
+// Atan returns the arc tangent of |x| <= 1e100 within 2^-94 relative.
+func (x DD) Atan() DD { return x.Atan2(FromFloat(1)) }
 
-// AsinDD returns the arc sine of |x| <= 1 within 2^-93 relative, by
+// Asin returns the arc sine of |x| <= 1 within 2^-93 relative, by
 // atan2(x, sqrt((1-x)(1+x))). |x| > 1 gives NaN.
-func AsinDD(x DD) DD { return Atan2DD(x, cofactor(x)) }
+func (x DD) Asin() DD { return x.Atan2(cofactor(x)) }
 
-// AcosDD returns the arc cosine of |x| <= 1 within 2^-93 relative, also near 1, by
+// Acos returns the arc cosine of |x| <= 1 within 2^-93 relative, also near 1, by
 // atan2(sqrt((1-x)(1+x)), x). |x| > 1 gives NaN.
-func AcosDD(x DD) DD { return Atan2DD(cofactor(x), x) }
+func (x DD) Acos() DD { return cofactor(x).Atan2(x) }
 
 // cofactor returns sqrt((1-x)(1+x)), NaN for |x| > 1.
 func cofactor(x DD) DD {

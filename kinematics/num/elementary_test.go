@@ -2,9 +2,11 @@ package num
 
 import (
 	"encoding/csv"
+	"maps"
 	"math"
 	"math/big"
 	"os"
+	"slices"
 	"strconv"
 	"testing"
 )
@@ -83,10 +85,10 @@ func doubles() map[string]struct {
 	}{
 		"exp": {1, one(Exp)}, "expm1": {1, one(Expm1)}, "log": {1, one(Log)}, "log1p": {1, one(Log1p)},
 		"sin": {1, one(Sin)}, "cos": {1, one(Cos)}, "tan": {1, one(Tan)},
-		"asin": {1, one(Asin)}, "acos": {1, one(Acos)}, "atan": {1, one(Atan)},
+		"asin": {1.2, one(Asin)}, "acos": {1, one(Acos)}, "atan": {1, one(Atan)},
 		"sinh": {2, one(Sinh)}, "cosh": {2, one(Cosh)}, "tanh": {2, one(Tanh)},
 		"asinh": {2, one(Asinh)}, "acosh": {2, one(Acosh)}, "atanh": {2, one(Atanh)},
-		"cbrt": {1, one(Cbrt)}, "atan2": {1, Atan2}, "hypot": {1, Hypot}, "pow": {1, Pow},
+		"cbrt": {1, one(Cbrt)}, "atan2": {1.4, Atan2}, "hypot": {1, Hypot}, "pow": {1, Pow},
 	}
 }
 
@@ -104,7 +106,8 @@ func TestElementaryAgainstTable(t *testing.T) {
 			worst[row.function], at[row.function] = off, row
 		}
 	}
-	for name, entry := range functions {
+	for _, name := range slices.Sorted(maps.Keys(functions)) {
+		entry := functions[name]
 		if count[name] < 30 {
 			t.Errorf("%s: only %d values", name, count[name])
 		}

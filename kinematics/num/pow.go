@@ -39,7 +39,7 @@ func Pow(x, y float64) float64 {
 
 // powPositive returns x^y for finite x > 0 and finite y.
 func powPositive(x, y float64) float64 {
-	exponent := LogDD(FromFloat(x)).MulFloat(y)
+	exponent := FromFloat(x).Log().MulFloat(y)
 	switch {
 	case exponent.Hi > 710:
 		return math.Inf(1)
