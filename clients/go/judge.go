@@ -6,6 +6,7 @@ import (
 	"fmt"
 	"io"
 	"sync"
+	"sync/atomic"
 	"time"
 
 	"google.golang.org/grpc"
@@ -25,14 +26,18 @@ type JudgeStream struct {
 	cancel   context.CancelFunc
 	verdicts chan *kinegatev1.VerdictBlock
 
-	mu       sync.Mutex // guards what follows and every send
+	// sending serialises frames. It is apart from mu, since gRPC may hold a sender
+	// back until the receiver, which needs mu, has read on.
+	sending  sync.Mutex
+	lastSent atomic.Int64 // in ns of the Unix epoch
+
+	mu       sync.Mutex // guards what follows
 	credit   sync.Cond
 	sizes    []int64 // of the blocks without a verdict, oldest first
 	bytes    int64
 	next     int64 // sequence of the next block
 	answered int64
-	sent     time.Time // of the last frame
-	err      error     // why the stream ended
+	err      error // why the stream ended
 	ended    bool
 	draining bool
 }
@@ -61,9 +66,10 @@ func (c *Client) Judge(ctx context.Context, open *kinegatev1.JudgeOpen) (*JudgeS
 	s := &JudgeStream{
 		Opened: opened, stream: stream, cancel: cancel,
 		verdicts: make(chan *kinegatev1.VerdictBlock, max(opened.GetCredit().GetBlockCount(), 1)),
-		next:     open.GetFirstSequence(), answered: open.GetFirstSequence() - 1, sent: time.Now(),
+		next:     open.GetFirstSequence(), answered: open.GetFirstSequence() - 1,
 	}
 	s.credit.L = &s.mu
+	s.lastSent.Store(time.Now().UnixNano())
 	go s.receive()
 	go s.beat(ctx)
 	return s, nil
@@ -87,6 +93,14 @@ func openStream(stream grpc.BidiStreamingClient[kinegatev1.JudgeRequest, kinegat
 // Send sends a block, whose sequence it sets, after waiting for the credit that it
 // costs. After the end of the stream it returns the reason.
 func (s *JudgeStream) Send(block *kinegatev1.EventBlock) error {
+	if err := s.reserve(block); err != nil {
+		return err
+	}
+	return s.send(&kinegatev1.JudgeRequest{Frame: &kinegatev1.JudgeRequest_Block{Block: block}})
+}
+
+// reserve waits for the credit of a block and gives it the next sequence.
+func (s *JudgeStream) reserve(block *kinegatev1.EventBlock) error {
 	s.mu.Lock()
 	defer s.mu.Unlock()
 	block.Sequence = s.next
@@ -104,14 +118,14 @@ func (s *JudgeStream) Send(block *kinegatev1.EventBlock) error {
 	s.sizes = append(s.sizes, size)
 	s.bytes += size
 	s.next++
-	return s.sendLocked(&kinegatev1.JudgeRequest{Frame: &kinegatev1.JudgeRequest_Block{Block: block}})
+	return nil
 }
 
 // CloseSend says that no more blocks will come. Recv goes on until the last
 // verdict.
 func (s *JudgeStream) CloseSend() error {
-	s.mu.Lock()
-	defer s.mu.Unlock()
+	s.sending.Lock()
+	defer s.sending.Unlock()
 	return s.stream.CloseSend()
 }
 
@@ -137,10 +151,12 @@ func (s *JudgeStream) reasonLocked() error {
 	return s.err
 }
 
-// sendLocked sends a frame; gRPC reports the end of a stream as io.EOF there and
+// send sends a frame; gRPC reports the end of a stream as io.EOF there and
 // the reason at Recv, so the receiver is left to find it.
-func (s *JudgeStream) sendLocked(request *kinegatev1.JudgeRequest) error {
-	s.sent = time.Now()
+func (s *JudgeStream) send(request *kinegatev1.JudgeRequest) error {
+	s.sending.Lock()
+	defer s.sending.Unlock()
+	s.lastSent.Store(time.Now().UnixNano())
 	if err := s.stream.Send(request); err != nil && !errors.Is(err, io.EOF) {
 		return err
 	}
@@ -195,13 +211,18 @@ func (s *JudgeStream) beat(ctx context.Context) {
 			return
 		case <-ticker.C:
 		}
-		s.mu.Lock()
-		if !s.ended && time.Since(s.sent) >= heartbeatInterval {
-			// A failure shows at the next Send or Recv.
-			_ = s.sendLocked(&kinegatev1.JudgeRequest{Frame: &kinegatev1.JudgeRequest_Heartbeat{
-				Heartbeat: &kinegatev1.Heartbeat{ReceivedSequence: s.answered, AnsweredSequence: s.answered},
-			}})
+		if silence := time.Duration(time.Now().UnixNano() - s.lastSent.Load()); silence < heartbeatInterval {
+			continue
 		}
+		s.mu.Lock()
+		answered, ended := s.answered, s.ended
 		s.mu.Unlock()
+		if ended {
+			return
+		}
+		// A failure shows at the next Send or Recv.
+		_ = s.send(&kinegatev1.JudgeRequest{Frame: &kinegatev1.JudgeRequest_Heartbeat{
+			Heartbeat: &kinegatev1.Heartbeat{ReceivedSequence: answered, AnsweredSequence: answered},
+		}})
 	}
 }
