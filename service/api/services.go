@@ -27,6 +27,9 @@ type Deps struct {
 	Limits Limits
 	// Now tells the time, for latency budgets and heartbeats; time.Now if nil.
 	Now func() time.Time
+	// StreamIdle is the time without a frame after which a judge stream is ended; a
+	// minute if 0.
+	StreamIdle time.Duration
 	// Drain says when to leave. Optional.
 	Drain Drain
 	// Observer sees what happens on judge streams. Optional.
@@ -80,6 +83,9 @@ func New(deps Deps) (*Services, error) {
 	}
 	if deps.Now == nil {
 		deps.Now = time.Now
+	}
+	if deps.StreamIdle == 0 {
+		deps.StreamIdle = time.Minute
 	}
 	if deps.Observer == nil {
 		deps.Observer = silent{}

@@ -1,0 +1,147 @@
+package main
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"os"
+
+	"github.com/prometheus/client_golang/prometheus"
+	"github.com/spf13/cobra"
+	"github.com/spf13/pflag"
+
+	"example.org/kinegate/service/config"
+	"example.org/kinegate/service/server"
+	"example.org/kinegate/service/telemetry"
+)
+
+// serveCommand runs the server.
+func serveCommand(p program) *cobra.Command {
+	s := &serving{program: p, flags: map[string]string{}}
+	command := &cobra.Command{
+		Use:   "serve",
+		Short: "Run the gRPC server until SIGTERM or SIGINT",
+		Long: "serve runs the gRPC server. Each setting is a flag, a variable of the environment\n" +
+			"(KINEGATE_ and its name in capitals) or a key of the file named by --config; the first\n" +
+			"of these that gives it wins.\n\n" +
+			"SIGTERM and SIGINT drain it: health turns NOT_SERVING, calls are answered until the\n" +
+			"notice and the time to drain are over, then it exits with 0. A second signal stops it\n" +
+			"at once. Faults of the configuration exit with 2, a server that fails with 1.",
+		Args: usage(cobra.NoArgs),
+		RunE: func(command *cobra.Command, _ []string) error { return s.run(command.Context()) },
+	}
+	f := command.Flags()
+	f.SortFlags = false
+	for _, setting := range server.Settings() {
+		s.flag(f, setting.Name, setting.Doc, setting.Default, setting.Kind())
+	}
+	s.flag(f, config.FileKey, "YAML file with settings.", "", "text")
+	f.BoolVar(&s.printOnly, "print-config", false, "Print the settings with where each came from, and exit.")
+	f.BoolVar(&s.validateOnly, "validate-config", false, "Check the settings and the files they name, and exit.")
+	return command
+}
+
+// serving is one run of the command.
+type serving struct {
+	program
+
+	flags                   map[string]string
+	printOnly, validateOnly bool
+}
+
+// flag adds the flag of a setting, whose text is kept for config to read.
+func (s *serving) flag(f *pflag.FlagSet, name, doc, standard, kind string) {
+	flag := f.VarPF(given{s.flags, name, standard, kind}, config.FlagName(name)[2:], "", doc)
+	if kind == "bool" {
+		flag.NoOptDefVal = "true"
+	}
+}
+
+// given is a flag that keeps the text it is given.
+type given struct {
+	flags                map[string]string
+	name, standard, kind string
+}
+
+// Set keeps the text.
+func (g given) Set(text string) error { g.flags[g.name] = text; return nil }
+
+// String is the default, for the help.
+func (g given) String() string { return g.standard }
+
+// Type is the kind of value, for the help.
+func (g given) Type() string { return g.kind }
+
+// run finds the settings and does what was asked with them.
+func (s *serving) run(ctx context.Context) error {
+	options, all, err := config.Load(config.Sources{
+		Flags: s.flags, Environ: s.environ, ReadFile: os.ReadFile,
+	})
+	if s.printOnly {
+		if printErr := config.Print(s.out, all); printErr != nil {
+			return printErr
+		}
+	}
+	if err != nil {
+		return usageError{err}
+	}
+	if s.printOnly && !s.validateOnly {
+		return nil
+	}
+	lines := telemetry.NewWriter(s.err)
+	defer lines.Close()
+	log, err := telemetry.NewLogger(lines, options.LogLevel)
+	if err != nil {
+		return usageError{err}
+	}
+	registry := prometheus.NewRegistry()
+	if err := telemetry.CountDropped(registry, lines.Dropped); err != nil {
+		return err
+	}
+	server, err := server.New(options, server.Deps{
+		Version: version(), Log: log, LogHeld: lines.Drop, Registry: registry,
+	})
+	if err != nil {
+		return usageError{err}
+	}
+	if s.validateOnly {
+		return nil
+	}
+	return s.serve(ctx, server, func(text string) { log.Info().Msg(text) })
+}
+
+// serve runs the server until a signal has stopped it or it fails.
+func (s *serving) serve(ctx context.Context, running *server.Server, say func(string)) error {
+	if err := running.Listen(ctx); err != nil {
+		return err
+	}
+	for _, name := range []server.Listener{server.Gate, server.General, server.Health, server.Metrics, server.Debug} {
+		if a := running.Addr(name); a != nil {
+			say(fmt.Sprintf("listening for %s at %s", name, a))
+		}
+	}
+	failed := make(chan error, 1)
+	go func() { failed <- running.Serve(ctx) }()
+	select {
+	case err := <-failed:
+		return err
+	case <-s.signals:
+	}
+	say("draining")
+	ctx, cancel := context.WithCancel(ctx)
+	defer cancel()
+	go func() {
+		select {
+		case <-s.signals:
+			cancel()
+		case <-ctx.Done():
+		}
+	}()
+	if err := running.Shutdown(ctx); errors.Is(err, server.ErrCut) {
+		say(err.Error())
+	} else if err != nil {
+		return err
+	}
+	say("stopped")
+	return <-failed
+}

@@ -1,0 +1,115 @@
+package server
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"io"
+	"sync/atomic"
+	"time"
+
+	"google.golang.org/grpc"
+	"google.golang.org/grpc/codes"
+	"google.golang.org/grpc/metadata"
+	"google.golang.org/grpc/status"
+	"google.golang.org/protobuf/proto"
+
+	"example.org/kinegate/service/api"
+)
+
+// call is one call on its way: the stream that handlers see, and what the record
+// says about it in the end.
+type call struct {
+	grpc.ServerStream
+
+	ctx    context.Context //nolint:containedctx // a ServerStream carries its context
+	method string
+	label  string
+	begun  time.Time
+	limits api.Limits
+
+	reference string // ours, unique: what a caller quotes to us
+	requestID string // the caller's if it is short and plain, else the reference
+	identity  string
+
+	// Readers and writers of a stream are different goroutines.
+	received, sent           atomic.Int64
+	receivedBytes, sentBytes atomic.Int64
+}
+
+// Context is the context of the call, with its deadline.
+func (c *call) Context() context.Context { return c.ctx }
+
+// RecvMsg receives the next message; io.EOF is the end.
+func (c *call) RecvMsg(m any) error {
+	message, ok := m.(proto.Message)
+	if !ok {
+		return fmt.Errorf("cannot receive a %T", m)
+	}
+	in := incoming{message: message, limits: c.limits}
+	if err := c.ServerStream.RecvMsg(&in); err != nil {
+		if errors.Is(err, io.EOF) {
+			return io.EOF
+		}
+		return receiveFailure(err)
+	}
+	if in.fault != nil {
+		return in.fault
+	}
+	c.received.Add(1)
+	c.receivedBytes.Add(int64(in.size))
+	return nil
+}
+
+// SendMsg sends a message.
+func (c *call) SendMsg(m any) error {
+	message, ok := m.(proto.Message)
+	if !ok {
+		return fmt.Errorf("cannot send a %T", m)
+	}
+	out, err := encode(message, c.limits.MessageBytes)
+	if err != nil {
+		return err
+	}
+	size := int64(out.data.Len())
+	if err := c.ServerStream.SendMsg(out); err != nil {
+		// Encoding is behind us: the caller or the connection has gone.
+		return &api.Failure{Reason: api.CallCancelled, Message: "the caller has gone", Cause: err}
+	}
+	c.sent.Add(1)
+	c.sentBytes.Add(size)
+	return nil
+}
+
+// receiveFailure names what the transport has refused and answered already, for the
+// record.
+func receiveFailure(err error) error {
+	s, ok := status.FromError(err)
+	if !ok || s.Code() != codes.Internal {
+		return err
+	}
+	return &api.Failure{Reason: api.MessageUndecodable, Message: s.Message(), Cause: err}
+}
+
+// Names of the metadata that calls carry.
+const (
+	requestIDKey = "x-request-id"
+	pushbackKey  = "grpc-retry-pushback-ms"
+	maxRequestID = 64
+)
+
+// plainID returns a caller's request id if it is safe to repeat in logs and errors,
+// else the empty string.
+func plainID(ctx context.Context) string {
+	values := metadata.ValueFromIncomingContext(ctx, requestIDKey)
+	if len(values) != 1 || len(values[0]) > maxRequestID {
+		return ""
+	}
+	for _, b := range []byte(values[0]) {
+		plain := b == '-' || b == '_' || b == '.' || '0' <= b && b <= '9' || 'a' <= b && b <= 'z' || 'A' <= b && b <= 'Z'
+		if !plain {
+			return ""
+		}
+	}
+	return values[0]
+}

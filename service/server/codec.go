@@ -1,0 +1,104 @@
+package server
+
+import (
+	"fmt"
+
+	"google.golang.org/grpc/mem"
+	"google.golang.org/protobuf/proto"
+
+	"example.org/kinegate/service/api"
+)
+
+// incoming is a message to receive. The codec puts what is wrong with it into fault
+// instead of failing: gRPC answers a codec that fails by itself, without an
+// ErrorInfo.
+type incoming struct {
+	message proto.Message
+	limits  api.Limits
+
+	size  int
+	fault *api.Failure
+}
+
+// outgoing is a message to send, encoded already: a reply that does not encode or is
+// too large is then still ours to answer for.
+type outgoing struct {
+	data mem.BufferSlice
+}
+
+// codec turns messages to bytes and back. It knows only the two frames above.
+type codec struct{}
+
+// Name is the content subtype.
+func (codec) Name() string { return "proto" }
+
+// Marshal hands out the bytes of an outgoing message.
+func (codec) Marshal(v any) (mem.BufferSlice, error) {
+	out, ok := v.(*outgoing)
+	if !ok {
+		return nil, fmt.Errorf("cannot send a %T", v)
+	}
+	return out.data, nil
+}
+
+// Unmarshal reads an incoming message.
+func (codec) Unmarshal(data mem.BufferSlice, v any) error {
+	in, ok := v.(*incoming)
+	if !ok {
+		return fmt.Errorf("cannot receive a %T", v)
+	}
+	in.size = data.Len()
+	if in.size > in.limits.MessageBytes {
+		in.fault = tooLarge(int64(in.size), int64(in.limits.MessageBytes))
+		return nil
+	}
+	buffer := data.MaterializeToBuffer(mem.DefaultBufferPool())
+	defer buffer.Free()
+	wire := buffer.ReadOnlyData()
+	if in.fault = checkWire(wire, in.message, int64(in.limits.DecodedBytes)); in.fault != nil {
+		return nil
+	}
+	if err := proto.Unmarshal(wire, in.message); err != nil {
+		in.fault = undecodable(in.message, err)
+	}
+	return nil
+}
+
+// encode returns the frame for a message, or why it cannot be sent.
+func encode(message proto.Message, limit int) (*outgoing, error) {
+	size := proto.Size(message)
+	if size > limit {
+		return nil, api.OverLimit(api.ReplyTooLarge, "the size of the reply in bytes,", int64(size), int64(limit),
+			"ask for less at a time")
+	}
+	// The size was computed above and the message does not change in between.
+	options := proto.MarshalOptions{UseCachedSize: true}
+	if mem.IsBelowBufferPoolingThreshold(size) {
+		data, err := options.Marshal(message)
+		if err != nil {
+			return nil, fmt.Errorf("reply does not encode: %w", err)
+		}
+		return &outgoing{mem.BufferSlice{mem.SliceBuffer(data)}}, nil
+	}
+	pool := mem.DefaultBufferPool()
+	data := pool.Get(size)
+	if _, err := options.MarshalAppend((*data)[:0], message); err != nil {
+		pool.Put(data)
+		return nil, fmt.Errorf("reply does not encode: %w", err)
+	}
+	return &outgoing{mem.BufferSlice{mem.NewBuffer(data, pool)}}, nil
+}
+
+// tooLarge is the failure of a message over the limit.
+func tooLarge(actual, limit int64) *api.Failure {
+	return api.OverLimit(api.MessageTooLarge, "the size of the message in bytes,", actual, limit,
+		"send several smaller messages, events as blocks of a judge stream")
+}
+
+// undecodable is the failure of bytes that are not the method's message.
+func undecodable(message proto.Message, cause error) *api.Failure {
+	name := string(message.ProtoReflect().Descriptor().FullName())
+	f := api.Refuse(api.MessageUndecodable, "the bytes are not a "+name, "message", name)
+	f.Cause = cause
+	return f
+}

@@ -1,0 +1,116 @@
+package server
+
+import (
+	"context"
+	"fmt"
+	"net"
+	"os"
+	"sync"
+	"sync/atomic"
+
+	"example.org/kinegate/service/telemetry"
+)
+
+// Listener names one of the listeners of a server.
+type Listener string
+
+// The listeners.
+const (
+	Gate    Listener = "gate"
+	General Listener = "general"
+	Health  Listener = "health"
+	Metrics Listener = "metrics"
+	Debug   Listener = "debug"
+)
+
+// connectionLimit is the reason under which connections over the limit are counted:
+// they end before there is a call to answer.
+const connectionLimit = "CONNECTION_LIMIT"
+
+// socketMode lets the owner and the group of a unix socket connect.
+const socketMode = 0o660
+
+// listenOS opens a listener of the operating system. The socket file of a process that
+// died is taken over; that of one that lives is not.
+func listenOS(ctx context.Context, network, where string) (net.Listener, error) {
+	var config net.ListenConfig
+	if network != "unix" {
+		return config.Listen(ctx, network, where)
+	}
+	if abandoned(ctx, where) {
+		_ = os.Remove(where)
+	}
+	l, err := config.Listen(ctx, network, where)
+	if err != nil {
+		return nil, fmt.Errorf("listening: %w", err)
+	}
+	if err := os.Chmod(where, socketMode); err != nil {
+		_ = l.Close()
+		return nil, fmt.Errorf("opening the socket to its group: %w", err)
+	}
+	return l, nil
+}
+
+// abandoned reports whether there is a socket file that nobody listens on.
+func abandoned(ctx context.Context, path string) bool {
+	info, err := os.Lstat(path)
+	if err != nil || info.Mode().Type() != os.ModeSocket {
+		return false
+	}
+	var dialer net.Dialer
+	conn, err := dialer.DialContext(ctx, "unix", path)
+	if err != nil {
+		return true
+	}
+	_ = conn.Close()
+	return false
+}
+
+// places bounds the connections of several listeners together.
+type places struct {
+	most    int64
+	open    atomic.Int64
+	metrics *telemetry.Metrics
+}
+
+// bounded is a listener that closes connections over the limit at once, so that they
+// cost neither a handshake nor a goroutine.
+type bounded struct {
+	net.Listener
+
+	places *places
+}
+
+// Accept returns the next connection that finds a place.
+func (b bounded) Accept() (net.Conn, error) {
+	for {
+		conn, err := b.Listener.Accept()
+		if err != nil {
+			return nil, err //nolint:wrapcheck // gRPC looks for net.Error in it
+		}
+		if b.places.open.Add(1) <= b.places.most {
+			b.places.metrics.Connections(1)
+			return &placed{Conn: conn, places: b.places}, nil
+		}
+		b.places.open.Add(-1)
+		b.places.metrics.Rejected(connectionLimit)
+		_ = conn.Close()
+	}
+}
+
+// placed is a connection that gives its place back when it is closed.
+type placed struct {
+	net.Conn
+
+	places *places
+	once   sync.Once
+}
+
+// Close closes the connection.
+func (p *placed) Close() error {
+	p.once.Do(func() {
+		p.places.open.Add(-1)
+		p.places.metrics.Connections(-1)
+	})
+	return p.Conn.Close() //nolint:wrapcheck // the connection's own error
+}

@@ -1,0 +1,72 @@
+package server
+
+import (
+	"context"
+	"net"
+	"time"
+
+	"github.com/prometheus/client_golang/prometheus"
+	"github.com/rs/zerolog"
+
+	"example.org/kinegate/service/api"
+)
+
+// Options are the settings of a server. Settings describes each of them; start from
+// Defaults.
+type Options struct {
+	GateAddress, GeneralAddress                 string
+	HealthAddress, MetricsAddress, DebugAddress string
+
+	CertificateFile, KeyFile, ClientCAFile string
+	UnsafePlaintext                        bool
+
+	MessageLimit, BlockLimit, DecodedLimit, HeaderLimit Bytes
+	CreditBlocks                                        int
+	CreditLimit, CreditPool, MemoryLimit                Bytes
+	Connections, ConnectionStreams                      int
+	GateStreams, GeneralStreams                         int
+	GateStreamWindow, GateConnectionWindow              Bytes
+	GeneralStreamWindow, GeneralConnectionWindow        Bytes
+
+	HandshakeTimeout                                     time.Duration
+	ClientPingMinimum, PingInterval, PingTimeout         time.Duration
+	ConnectionIdle, ConnectionAge, ConnectionAgeGrace    time.Duration
+	DefaultDeadline, LongestDeadline, StreamIdle         time.Duration
+	DrainNotice, DrainTime, StopMargin, TerminationGrace time.Duration
+
+	ParticleFiles, SelectionFiles []string
+	Reflection                    bool
+	LogLevel                      string
+}
+
+// Deps is what a server gets from outside. Every part is optional.
+type Deps struct {
+	// Version is the version of the program.
+	Version string
+	// Log takes the log lines; nothing is logged without.
+	Log zerolog.Logger
+	// LogHeld is called for each line of a failed call that is held back as too many.
+	LogHeld func()
+	// Registry takes the metrics and is what /metrics shows; a new one if nil.
+	Registry *prometheus.Registry
+	// Listen opens a listener; that of the operating system if nil.
+	Listen func(ctx context.Context, network, address string) (net.Listener, error)
+	// Authorise decides whether an identity may call a method; nil allows all. The
+	// identity is the first URI or DNS name of the caller's certificate, or empty.
+	// What it returns should be a *api.Failure.
+	Authorise func(identity, method string) error
+	// Now tells the time to the judge; the system's clock if nil.
+	Now func() time.Time
+}
+
+// limits are the options in the form the api takes.
+func (o *Options) limits() api.Limits {
+	l := api.DefaultLimits()
+	l.MessageBytes = int(o.MessageLimit)
+	l.BlockBytes = int(o.BlockLimit)
+	l.DecodedBytes = int(o.DecodedLimit)
+	l.CreditBlocks = o.CreditBlocks
+	l.CreditBytes = int(o.CreditLimit)
+	l.PoolBytes = int(o.CreditPool)
+	return l
+}

@@ -1,0 +1,56 @@
+package server
+
+import (
+	"strconv"
+	"strings"
+	"time"
+
+	"github.com/rs/zerolog"
+	"google.golang.org/grpc/codes"
+	healthpb "google.golang.org/grpc/health/grpc_health_v1"
+)
+
+// write finishes the log line of a call. Nothing that a caller sent is in it but the
+// method, a plain request id and the identity of a checked certificate.
+func (f *front) write(line *zerolog.Event, c *call, code string, took time.Duration) {
+	line.Str("method", printable(c.method)).
+		Str("code", code).
+		Dur("duration_ms", took).
+		Int64("received_count", c.received.Load()).
+		Int64("received_bytes", c.receivedBytes.Load()).
+		Int64("sent_count", c.sent.Load()).
+		Int64("sent_bytes", c.sentBytes.Load()).
+		Str("identity", c.identity).
+		Str("request_id", c.requestID).
+		Str("reference", c.reference).
+		Msg("call")
+}
+
+// isHealth reports whether a method belongs to the health check.
+func isHealth(method string) bool {
+	return strings.HasPrefix(method, "/"+healthpb.Health_ServiceDesc.ServiceName+"/")
+}
+
+// maxMethod bounds how much of an unknown method's name is logged.
+const maxMethod = 120
+
+// printable cuts an unknown method's name to a length.
+func printable(method string) string {
+	if len(method) > maxMethod {
+		return strings.ToValidUTF8(method[:maxMethod], "") + "..."
+	}
+	return method
+}
+
+// codeName is the name of a code as the gRPC specification writes it.
+func codeName(code codes.Code) string {
+	names := [...]string{
+		"OK", "CANCELLED", "UNKNOWN", "INVALID_ARGUMENT", "DEADLINE_EXCEEDED", "NOT_FOUND", "ALREADY_EXISTS",
+		"PERMISSION_DENIED", "RESOURCE_EXHAUSTED", "FAILED_PRECONDITION", "ABORTED", "OUT_OF_RANGE",
+		"UNIMPLEMENTED", "INTERNAL", "UNAVAILABLE", "DATA_LOSS", "UNAUTHENTICATED",
+	}
+	if int(code) < len(names) {
+		return names[code]
+	}
+	return "CODE_" + strconv.Itoa(int(code))
+}

@@ -1,0 +1,260 @@
+package server
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"net"
+	"net/http"
+	"sync"
+
+	"github.com/prometheus/client_golang/prometheus"
+	"github.com/prometheus/client_golang/prometheus/collectors"
+	"google.golang.org/grpc"
+	"google.golang.org/grpc/credentials"
+	healthpb "google.golang.org/grpc/health/grpc_health_v1"
+	"google.golang.org/grpc/keepalive"
+	"google.golang.org/grpc/reflection"
+	reflectionpb "google.golang.org/grpc/reflection/grpc_reflection_v1"
+	reflectionalphapb "google.golang.org/grpc/reflection/grpc_reflection_v1alpha"
+
+	"example.org/kinegate/service/api"
+	"example.org/kinegate/service/telemetry"
+)
+
+// Server is one server with its listeners.
+type Server struct {
+	options Options
+	deps    Deps
+
+	metrics      *telemetry.Metrics
+	services     *api.Services
+	health       *health
+	certificates *certificates // nil for plaintext
+	fronts       map[Listener]*front
+	webs         map[Listener]*http.Server
+	places       places
+
+	leaving chan struct{} // closed when the notice is over
+	stopped chan struct{} // closed when Shutdown is done
+
+	mu        sync.Mutex // guards the rest
+	listeners map[Listener]net.Listener
+	shutting  bool
+}
+
+// New checks the options, reads the files they name and returns a server that does not
+// listen yet. Faults of options and files are a fault.List or *fault.Error with names
+// of settings as fields.
+func New(options Options, deps Deps) (*Server, error) {
+	if err := options.Validate(); err != nil {
+		return nil, err
+	}
+	if deps.Registry == nil {
+		deps.Registry = prometheus.NewRegistry()
+	}
+	if deps.Listen == nil {
+		deps.Listen = listenOS
+	}
+	metrics, err := telemetry.NewMetrics(deps.Registry, deps.Version)
+	if err != nil {
+		return nil, fmt.Errorf("registering metrics: %w", err)
+	}
+	for _, c := range []prometheus.Collector{
+		collectors.NewGoCollector(), collectors.NewProcessCollector(collectors.ProcessCollectorOpts{}),
+	} {
+		// A registry that has them already has the same.
+		_ = deps.Registry.Register(c)
+	}
+	s := &Server{
+		options: options, deps: deps, metrics: metrics,
+		fronts: map[Listener]*front{}, webs: map[Listener]*http.Server{},
+		listeners: map[Listener]net.Listener{},
+		places:    places{most: int64(options.Connections), metrics: metrics},
+		leaving:   make(chan struct{}), stopped: make(chan struct{}),
+	}
+	s.health = newHealth(s.leaving)
+	if options.CertificateFile != "" {
+		if s.certificates, err = loadCertificates(&s.options, metrics, deps.Log); err != nil {
+			return nil, err
+		}
+	}
+	if s.services, err = newServices(&s.options, &deps, metrics, s.leaving); err != nil {
+		return nil, err
+	}
+	s.build()
+	return s, nil
+}
+
+// build makes the gRPC and HTTP servers.
+func (s *Server) build() {
+	o := &s.options
+	d := &desk{
+		limits: o.limits(), metrics: s.metrics, callLog: telemetry.NewCallLog(s.deps.Log, s.deps.LogHeld),
+		authorise: s.deps.Authorise, defaultDeadline: o.DefaultDeadline, longestDeadline: o.LongestDeadline,
+		leaving: s.leaving, nonce: newNonce(),
+	}
+	s.fronts[Gate] = s.rpcFront(d, o.GateStreams, o.GateStreamWindow, o.GateConnectionWindow)
+	s.fronts[General] = s.rpcFront(d, o.GeneralStreams, o.GeneralStreamWindow, o.GeneralConnectionWindow)
+	s.health.know(s.fronts[General].server.GetServiceInfo())
+	if o.HealthAddress != "" {
+		f := newFront(d, o.GeneralStreams, s.serverOptions(o.GeneralStreamWindow, o.GeneralConnectionWindow))
+		healthpb.RegisterHealthServer(f, s.health)
+		s.fronts[Health] = f
+	}
+	if o.MetricsAddress != "" {
+		s.webs[Metrics] = metricsWeb(s.deps.Registry, s.health)
+	}
+	if o.DebugAddress != "" {
+		s.webs[Debug] = debugWeb()
+	}
+}
+
+// rpcFront makes the front of a listener for rpcs.
+func (s *Server) rpcFront(d *desk, most int, stream, connection Bytes) *front {
+	options := s.serverOptions(stream, connection)
+	if s.certificates != nil {
+		options = append(options, grpc.Creds(credentials.NewTLS(s.certificates.config())))
+	}
+	f := newFront(d, most, options)
+	s.services.Register(f)
+	healthpb.RegisterHealthServer(f, s.health)
+	if s.options.Reflection {
+		described := reflection.ServerOptions{Services: f.server}
+		reflectionpb.RegisterServerReflectionServer(f, reflection.NewServerV1(described))
+		reflectionalphapb.RegisterServerReflectionServer(f, reflection.NewServer(described))
+	}
+	return f
+}
+
+// newFront makes a front with its gRPC server.
+func newFront(d *desk, most int, options []grpc.ServerOption) *front {
+	f := &front{desk: d, most: int64(most)}
+	f.server = grpc.NewServer(append(options,
+		grpc.UnknownServiceHandler(f.unknown), grpc.InTapHandle(f.tapped), grpc.ForceServerCodecV2(codec{}))...)
+	return f
+}
+
+// serverOptions are the limits that every gRPC server has.
+func (s *Server) serverOptions(stream, connection Bytes) []grpc.ServerOption {
+	o := &s.options
+	return []grpc.ServerOption{
+		// The codec answers for messages up to twice the limit with an ErrorInfo; the
+		// transport stops above, before it has read them.
+		grpc.MaxRecvMsgSize(2 * int(o.MessageLimit)),
+		grpc.MaxSendMsgSize(2 * int(o.MessageLimit)),
+		grpc.MaxHeaderListSize(uint32(o.HeaderLimit)),          //nolint:gosec // at most 1 MiB
+		grpc.MaxConcurrentStreams(uint32(o.ConnectionStreams)), //nolint:gosec // at most 65,536
+		grpc.StaticStreamWindowSize(int32(stream)),             //nolint:gosec // at most 1 GiB
+		grpc.StaticConnWindowSize(int32(connection)),           //nolint:gosec // at most 1 GiB
+		grpc.ConnectionTimeout(o.HandshakeTimeout),
+		grpc.WaitForHandlers(true),
+		grpc.KeepaliveEnforcementPolicy(keepalive.EnforcementPolicy{
+			MinTime: o.ClientPingMinimum, PermitWithoutStream: true,
+		}),
+		grpc.KeepaliveParams(keepalive.ServerParameters{
+			MaxConnectionIdle: o.ConnectionIdle, MaxConnectionAge: o.ConnectionAge,
+			MaxConnectionAgeGrace: o.ConnectionAgeGrace, Time: o.PingInterval, Timeout: o.PingTimeout,
+		}),
+	}
+}
+
+// Listen opens every listener. On failure none stays open.
+func (s *Server) Listen(ctx context.Context) error {
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	for _, l := range []struct {
+		name  Listener
+		where string
+	}{
+		{Gate, s.options.GateAddress}, {General, s.options.GeneralAddress}, {Health, s.options.HealthAddress},
+		{Metrics, s.options.MetricsAddress}, {Debug, s.options.DebugAddress},
+	} {
+		if l.where == "" || s.listeners[l.name] != nil {
+			continue
+		}
+		a, e := parseAddress(l.where)
+		if e != nil {
+			return e
+		}
+		listener, err := s.deps.Listen(ctx, a.network, a.where)
+		if err != nil {
+			for _, open := range s.listeners {
+				_ = open.Close()
+			}
+			clear(s.listeners)
+			return fmt.Errorf("listener %s at %s: %w", l.name, l.where, err)
+		}
+		if l.name == Gate || l.name == General {
+			listener = bounded{listener, &s.places}
+		}
+		s.listeners[l.name] = listener
+	}
+	return nil
+}
+
+// Addr is where a listener listens; nil for one that does not.
+func (s *Server) Addr(name Listener) net.Addr {
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	if l := s.listeners[name]; l != nil {
+		return l.Addr()
+	}
+	return nil
+}
+
+// Serve opens the listeners that are not open, checks the services by a known answer,
+// and answers calls until Shutdown is done. It returns nil then, and an error if the
+// check or a listener fails or ctx ends before; it then stops at once.
+func (s *Server) Serve(ctx context.Context) error {
+	if err := s.Listen(ctx); err != nil {
+		return err
+	}
+	ctx, cancel := context.WithCancel(ctx)
+	defer cancel()
+	if s.certificates != nil {
+		go s.certificates.watch(ctx)
+	}
+	failed := make(chan error, len(s.fronts)+len(s.webs))
+	s.mu.Lock()
+	for name, f := range s.fronts {
+		l := s.listeners[name]
+		go func() { failed <- serving(name, f.server.Serve(l)) }()
+	}
+	for name, w := range s.webs {
+		l := s.listeners[name]
+		go func() { failed <- serving(name, w.Serve(l)) }()
+	}
+	s.mu.Unlock()
+	if err := api.Contain(api.SelfTest); err != nil {
+		s.stop()
+		return fmt.Errorf("a known answer does not come out: %w", err)
+	}
+	s.mu.Lock()
+	if !s.shutting {
+		s.health.setReady(true)
+	}
+	s.mu.Unlock()
+	for {
+		select {
+		case <-s.stopped:
+			return nil
+		case <-ctx.Done():
+			s.stop()
+			return ctx.Err()
+		case err := <-failed:
+			if err != nil {
+				s.stop()
+				return err
+			}
+		}
+	}
+}
+
+// serving names the listener that failed; one that was closed on purpose has not.
+func serving(name Listener, err error) error {
+	if err == nil || errors.Is(err, http.ErrServerClosed) || errors.Is(err, grpc.ErrServerStopped) {
+		return nil
+	}
+	return fmt.Errorf("listener %s: %w", name, err)
+}

@@ -1,0 +1,65 @@
+package server
+
+import (
+	"io"
+	"net/http"
+	"net/http/pprof"
+	"time"
+
+	"github.com/prometheus/client_golang/prometheus"
+	"github.com/prometheus/client_golang/prometheus/promhttp"
+)
+
+// Bounds of the HTTP listeners. Profiles take as long as they are asked to, a scrape
+// does not.
+const (
+	webHeaderTimeout  = 5 * time.Second
+	webIdleTimeout    = 2 * time.Minute
+	webScrapeTimeout  = 10 * time.Second
+	webHeaderBytes    = 16 << 10
+	webScrapesAtATime = 4
+)
+
+// metricsWeb serves metrics and the two states of health.
+func metricsWeb(registry *prometheus.Registry, h *health) *http.Server {
+	mux := http.NewServeMux()
+	mux.Handle("GET /metrics", promhttp.HandlerFor(registry, promhttp.HandlerOpts{
+		EnableOpenMetrics:   true,
+		MaxRequestsInFlight: webScrapesAtATime,
+		Timeout:             webScrapeTimeout,
+		Registry:            registry,
+	}))
+	mux.HandleFunc("GET /livez", func(w http.ResponseWriter, _ *http.Request) { state(w, true) })
+	mux.HandleFunc("GET /readyz", func(w http.ResponseWriter, _ *http.Request) { state(w, h.isReady()) })
+	return web(mux)
+}
+
+// debugWeb serves profiles.
+func debugWeb() *http.Server {
+	mux := http.NewServeMux()
+	mux.HandleFunc("GET /debug/pprof/", pprof.Index)
+	mux.HandleFunc("GET /debug/pprof/cmdline", pprof.Cmdline)
+	mux.HandleFunc("GET /debug/pprof/profile", pprof.Profile)
+	mux.HandleFunc("GET /debug/pprof/symbol", pprof.Symbol)
+	mux.HandleFunc("GET /debug/pprof/trace", pprof.Trace)
+	return web(mux)
+}
+
+func web(handler http.Handler) *http.Server {
+	return &http.Server{
+		Handler: handler, ReadHeaderTimeout: webHeaderTimeout, IdleTimeout: webIdleTimeout,
+		MaxHeaderBytes: webHeaderBytes,
+	}
+}
+
+// state writes a state of health.
+func state(w http.ResponseWriter, good bool) {
+	w.Header().Set("Content-Type", "text/plain; charset=utf-8")
+	text := "ok\n"
+	if !good {
+		w.WriteHeader(http.StatusServiceUnavailable)
+		text = "not ready\n"
+	}
+	// Whoever asked may be gone; there is nobody else to tell.
+	_, _ = io.WriteString(w, text)
+}
