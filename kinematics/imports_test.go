@@ -25,9 +25,9 @@ var coreLayer = map[string]int{
 	"planning":   6,
 }
 
-// serviceLayer does the same for the service: wiring above the server, the server above its
-// handlers and its metrics.
-var serviceLayer = map[string]int{"api": 1, "telemetry": 1, "server": 2, "cmd": 3}
+// serviceLayer does the same for the service: wiring above the configuration, that above the server,
+// and the server above its handlers and its metrics.
+var serviceLayer = map[string]int{"api": 1, "telemetry": 1, "server": 2, "config": 3, "cmd": 4}
 
 // outsideTheCore are packages of the standard library that would bring a clock, a log, the
 // outside, random numbers of another stream or functions whose last bit depends on the processor.
@@ -184,7 +184,7 @@ func serviceRefusal(importer, imported string) string {
 	case from == to, low < high:
 		return ""
 	default:
-		return "imports go cmd -> server -> api, telemetry"
+		return "imports go cmd -> config -> server -> api, telemetry"
 	}
 }
 
