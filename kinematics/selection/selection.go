@@ -1,5 +1,7 @@
 package selection
 
+import "example.org/kinegate/kinematics/reaction"
+
 // Limits of a selection.
 const (
 	// MaxHypotheses is the largest number of hypotheses of a selection.
@@ -8,7 +10,7 @@ const (
 	MaxNameLength = 64
 	// MaxProducts is the largest number of products of a hypothesis, intermediates
 	// included.
-	MaxProducts = 32
+	MaxProducts = reaction.MaxProducts
 	// MaxWindows is the largest number of windows of a hypothesis, recorded
 	// observables included.
 	MaxWindows = 128
@@ -70,23 +72,10 @@ type Hypothesis struct {
 }
 
 // Reaction is the structured form of a reaction or decay.
-type Reaction struct {
-	// Initial holds two names for a reaction, one for a decay, none for a
-	// hypothesis without an initial state.
-	Initial []string
-	// Products in order.
-	Products []Product
-	// Inclusive says that anything else may come out too.
-	Inclusive bool
-}
+type Reaction = reaction.Spec
 
-// Product is one product and how it decays.
-type Product struct {
-	// Particle is a name or alias.
-	Particle string
-	// Daughters in order; empty where the product is not decayed.
-	Daughters []Product
-}
+// Product is one product of the structured form and how it decays.
+type Product = reaction.ProductSpec
 
 // Role is what a hypothesis does to the gate.
 type Role uint8

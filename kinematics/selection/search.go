@@ -1,0 +1,278 @@
+package selection
+
+import (
+	"math"
+
+	"example.org/kinegate/kinematics/event"
+)
+
+// search is the state of one search through the assignments of a hypothesis.
+type search struct {
+	// signatures are those of the slots, of the hypothesis or of its conjugate.
+	signatures []uint16
+	// must are the objects that no rule lets stay unassigned.
+	must set
+	// possible looks for the best possible assignment, whatever the condition says.
+	possible bool
+	// tried counts complete assignments and incomplete ones that a check ended.
+	tried int32
+	// exhausted says that the budget ended the search.
+	exhausted bool
+	// found, rank and objects are the best possible assignment.
+	found   bool
+	rank    float64
+	objects [MaxProducts]uint8
+}
+
+// test tests the event against hypothesis h and appends its entries. It returns false
+// if the work budget ended before all was tried.
+func (w *Worker) test(h int, entries *event.Entries) bool {
+	hypothesis := &w.program.hypotheses[h]
+	w.hypothesis = hypothesis
+	w.used = 0
+	w.search = search{}
+	if !w.findCandidates() || !w.allowExtra() || !w.fits() {
+		return true
+	}
+	w.prepare()
+	open := w.openCandidates()
+	if open {
+		w.try()
+	}
+	finished := !w.search.exhausted
+	for i := range w.candidates {
+		if c := &w.candidates[i]; c.accepted && !(w.rank[h] <= c.rank) {
+			w.rank[h] = c.rank
+		}
+	}
+	if entries != nil {
+		w.report(h, finished, entries)
+	}
+	return finished
+}
+
+// allowExtra applies the rule on extra objects: how many there are is known, since
+// every assignment takes as many objects as there are slots. It sets the objects
+// that must be assigned, and returns false where no assignment can follow the rule.
+func (w *Worker) allowExtra() bool {
+	h, o := w.hypothesis, &w.objects
+	extra := o.count - len(h.slots)
+	if extra < 0 {
+		return false
+	}
+	switch h.extra {
+	case AnyExtraObjects:
+		return true
+	case SoftPhotons:
+		w.search.must = upTo(o.count) &^ o.photons
+		for rest := o.photons; rest != 0; rest &= rest - 1 {
+			if j := rest.lowest(); !(o.length[j] < h.extraEnergyGeV) {
+				w.search.must |= 1 << j
+			}
+		}
+		return extra <= h.extraCount && w.search.must.count() <= len(h.slots)
+	case NoExtraObjects:
+	}
+	w.search.must = upTo(o.count)
+	return extra == 0
+}
+
+// fits reports whether the hypothesis or its conjugate has objects for every slot and
+// a slot for every object that must be assigned.
+func (w *Worker) fits() bool {
+	for _, signatures := range w.hypothesis.variants {
+		var all set
+		fit := true
+		for _, s := range signatures {
+			all |= w.matching[s]
+			fit = fit && w.matching[s] != 0
+		}
+		if fit && w.search.must&^all == 0 {
+			return true
+		}
+	}
+	return false
+}
+
+// prepare computes what the windows of the hypothesis need of the objects.
+func (w *Worker) prepare() {
+	p := w.program
+	for _, k := range w.hypothesis.kinds {
+		if m := &w.motions[k]; !m.ready {
+			m.load(p.kinds[k], &w.objects, w.block, w.index)
+		}
+	}
+	for _, k := range w.hypothesis.tables {
+		if t := &w.tables[k]; !t.ready {
+			pair := p.tables[k]
+			t.load(&w.objects, &w.motions[pair.first], &w.motions[pair.second], pair.first == pair.second)
+		}
+	}
+}
+
+// try searches the assignments of the hypothesis and of its conjugate.
+func (w *Worker) try() {
+	for _, signatures := range w.hypothesis.variants {
+		w.search.signatures = signatures
+		if !w.place(0) {
+			return
+		}
+	}
+}
+
+// place tries every object for slot k and those after it, in ascending order. It
+// returns false where the search is to end.
+func (w *Worker) place(k int) bool {
+	h, s := w.hypothesis, &w.search
+	if k == len(h.slots) {
+		return w.complete()
+	}
+	slot := &h.slots[k]
+	choices := w.matching[s.signatures[k]] &^ w.used
+	if slot.after >= 0 {
+		choices &= above(int(w.assigned[slot.after]))
+	}
+	if must := s.must &^ w.used; must != 0 {
+		if must.count() == len(h.slots)-k {
+			choices &= must
+		}
+		if slot.lowest {
+			choices &= upTo(must.lowest() + 1)
+		}
+	}
+	if choices == 0 {
+		w.left-- // a way that ends here is work too
+	}
+	for ; choices != 0; choices &= choices - 1 {
+		if w.left <= 0 {
+			s.exhausted = true
+			return false
+		}
+		object := choices.lowest()
+		w.assigned[k] = uint8(object) //nolint:gosec // below maxObjects
+		w.used |= 1 << object
+		more := true
+		if s.possible || w.all(h.steps[k]) {
+			more = w.place(k + 1)
+		} else {
+			s.tried++
+			w.left--
+		}
+		w.used &^= 1 << object
+		if !more {
+			return false
+		}
+	}
+	return true
+}
+
+// complete judges a complete assignment with every open candidate. It returns false
+// where the search is to end: without a ranking the first that passes is the best.
+func (w *Worker) complete() bool {
+	h, s := w.hypothesis, &w.search
+	rank := w.distance()
+	if s.possible {
+		w.left--
+		if !s.found || rank < s.rank {
+			s.found, s.rank, s.objects = true, rank, w.assigned
+		}
+		return len(h.ranking) > 0
+	}
+	s.tried++
+	waiting := len(h.ranking) > 0
+	for i := range w.candidates {
+		c := &w.candidates[i]
+		if !c.open {
+			continue
+		}
+		if w.left <= 0 {
+			s.exhausted = true
+			return false
+		}
+		w.left--
+		if c.accepted && !(rank < c.rank) {
+			continue
+		}
+		w.enter(c)
+		if w.all(h.final) {
+			c.accepted, c.rank, c.objects = true, rank, w.assigned
+		}
+		waiting = waiting || !c.accepted
+	}
+	return waiting
+}
+
+// distance returns the rank of the assignment: the sum of the squared distances, 0
+// without a ranking and +Inf where a mass cannot be computed.
+func (w *Worker) distance() float64 {
+	sum := 0.0
+	for i := range w.hypothesis.ranking {
+		r := &w.hypothesis.ranking[i]
+		d := (w.value(&r.mass) - r.reference) / r.scale
+		sum += float64(d * d)
+	}
+	if math.IsNaN(sum) {
+		return math.Inf(1)
+	}
+	return sum
+}
+
+// report appends the entries of hypothesis h, one per candidate.
+func (w *Worker) report(h int, finished bool, entries *event.Entries) {
+	tried := w.search.tried
+	possible := false
+	for i := range w.candidates {
+		c := &w.candidates[i]
+		row := event.Entry{
+			Hypothesis: int16(h), BeamRow: int16(c.row), //nolint:gosec // at most MaxHypotheses, MaxCandidates
+			Weight: c.weight, Status: event.Accepted, Tried: tried,
+			ChiSquare: math.NaN(), Probability: math.NaN(),
+		}
+		w.assigned = c.objects
+		if !c.accepted {
+			if w.detail != AllEntries || !finished || !w.lookForPossible(&possible) {
+				continue
+			}
+			row.Status = event.Rejected
+			w.assigned = w.search.objects
+		}
+		w.enter(c)
+		w.describe(&row)
+		entries.Append(row)
+	}
+}
+
+// lookForPossible finds the best possible assignment, once, and reports whether there
+// is one. It has a budget of its own, so that what entries are asked for changes no
+// verdict; where that ends first, the best of those tried stands.
+func (w *Worker) lookForPossible(done *bool) bool {
+	if !*done {
+		*done = true
+		must, left := w.search.must, w.left
+		w.search = search{must: must, possible: true}
+		w.left = w.program.budget
+		w.try()
+		w.left = left
+	}
+	return w.search.found
+}
+
+// describe sets the assignment and the recorded observables of an entry.
+func (w *Worker) describe(row *event.Entry) {
+	h := w.hypothesis
+	w.assignment = w.assignment[:0]
+	for range h.products {
+		w.assignment = append(w.assignment, -1)
+	}
+	w.used = 0
+	for k := range h.slots {
+		object := w.assigned[k]
+		w.assignment[h.slots[k].product] = int16(object)
+		w.used |= 1 << object
+	}
+	w.values = w.values[:0]
+	for i := range h.record {
+		w.values = append(w.values, w.value(&h.record[i]))
+	}
+	row.Assignment, row.Observables = w.assignment, w.values
+}
