@@ -42,6 +42,9 @@ func Sincos(x float64) (sin, cos float64) {
 //
 // Source of the polynomial: FreeBSD k_tan.c, see NOTICE.
 func Tan(x float64) float64 {
+	if math.Abs(x) < 0x1p-28 {
+		return x
+	}
 	quadrant, r, t := reduceQuadrant(x)
 	return tanKernel(r, t, quadrant&1 != 0)
 }

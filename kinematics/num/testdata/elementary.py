@@ -58,6 +58,9 @@ arguments = {
     "asinh": spread(1e-17, 1e300, 50, BOTH) + near([2.0, 0.5, 1.0, 2.0**28, 2.0**-28]),
     "acosh": [1 + v for v in spread(1e-15, 1, 40)] + spread(2, 1e300, 30) + near([2.0, 2.0**28]),
     "atanh": spread(1e-17, 1, 60, BOTH) + near([0.5, -0.5, 2.0**-28]) + [1 - 2**-53, -1 + 2**-53],
+    "erf": spread(1e-12, 6, 60, BOTH) + near([0.84375, 1.25, 2.857142857142857, 0.25]),
+    "erfc": spread(1e-12, 26, 60, BOTH) + near([0.84375, 1.25, 2.857142857142857, 0.25]),
+    "exp2": spread(1e-17, 1000, 60, BOTH) + near([0.5, 1.5, -0.5]) + [1023.9, -1073.5],
     "cbrt": spread(1e-300, 1e300, 60, BOTH) + near([1.0, 8.0, 27.0]) + [5e-324, 1e-310],
 }
 pairs = {
@@ -68,6 +71,8 @@ pairs = {
     "pow": [(a, random.uniform(-20, 20)) for a in spread(1e-9, 1e9, 80)]
     + [(math.nextafter(1, 2), 1e15), (math.nextafter(1, 0), 1e17), (1.0000001, 1e9), (2.0, 1023.5), (2.0, -1060.5), (10.0, 308.0),
        (10.0, -320.0), (-2.0, 3.0), (-1.5, 7.0), (0.5, 1074.0), (1e-300, 0.001), (3.0, 0.3333333333333333), (1 + 2**-30, 2.0**39), (0.9999999999, -7e12)],
+    "gammaq": [(a / 2, a / 2 * f) for a in (1, 2, 3, 5, 8, 20, 61, 100, 101, 400, 2000) for f in (1e-6, 0.1, 0.7, 1.0, 1.1, 1.6, 4.0)]
+    + [(1.5, 500.0), (0.1, 0.01), (0.1, 5.0), (3.7, 2.2), (100000.0, 100500.0)],
 }
 
 
@@ -77,6 +82,8 @@ def value(name, *args):
         "exp": mp.exp, "expm1": mp.expm1, "log": mp.log, "log1p": mp.log1p, "sin": mp.sin, "cos": mp.cos, "tan": mp.tan,
         "asin": mp.asin, "acos": mp.acos, "atan": mp.atan, "sinh": mp.sinh, "cosh": mp.cosh, "tanh": mp.tanh,
         "asinh": mp.asinh, "acosh": mp.acosh, "atanh": mp.atanh,
+        "erf": mp.erf, "erfc": mp.erfc, "exp2": lambda v: mp.power(2, v),
+        "gammaq": lambda a, v: mp.gammainc(a, v, mp.inf, regularized=True),
         "cbrt": lambda v: mp.sign(v) * mp.cbrt(abs(v)),
         "atan2": mp.atan2, "hypot": mp.hypot, "pow": mp.power,
     }[name](*x)
