@@ -40,6 +40,6 @@ func FastTwoSum(a, b float64) (s, e float64) {
 // Source: P. Karp and P. Markstein, ACM Trans. Math. Softw. 23 (1997) 561; the
 // fused multiply-add makes the error term one instruction.
 func TwoProd(a, b float64) (p, e float64) {
-	p = a * b
+	p = float64(a * b) // Rounded here: inlined, it would fuse with the caller's sums.
 	return p, math.FMA(a, b, -p)
 }
