@@ -10,22 +10,22 @@ import (
 )
 
 // Given says which quantity of a body's motion a number is.
-type Given uint8
+type Given = breakup.Given
 
 // The three ways to give the motion of a body, all in GeV.
 const (
-	ByMomentum Given = iota
-	ByKinetic
-	ByTotal
+	ByMomentum = breakup.ByMomentum
+	ByKinetic  = breakup.ByKinetic
+	ByTotal    = breakup.ByTotal
 )
 
 // Body is an initial body: its mass and one quantity of its motion, in GeV. The zero
 // values of Given and Value stand for a body at rest.
-type Body struct {
-	Mass  float64
-	Given Given
-	Value float64
-}
+type Body breakup.Body
+
+func (b Body) motion() (p, t, e num.DD) { return breakup.Body(b).Motion() }
+
+func (b Body) check(op, field string) error { return breakup.Body(b).Check(op, field) }
 
 // Collision is two initial bodies and how they meet, held so that the energy above any
 // threshold keeps all its digits. Its functions make it; the zero value is not useful.
@@ -62,60 +62,14 @@ const (
 	bySum
 )
 
-// Smallest and largest magnitudes of a mass, an energy or a momentum. Products of four
-// of them, with the low words of double-doubles, stay inside the doubles.
+// The magnitudes of masses, energies and momenta.
 const (
-	smallest = 1e-30
-	largest  = 1e30
+	smallest = breakup.Smallest
+	largest  = breakup.Largest
 )
 
 // checkSize refuses a number that is neither 0 nor within smallest..largest.
-func checkSize(op, field string, x float64) error {
-	if x == 0 || (x >= smallest && x <= largest) {
-		return nil
-	}
-	return fault.Number(field, x, "0 or within 1e-30..1e30").In(op)
-}
-
-// motion returns momentum, kinetic and total energy of the body.
-//
-//	T = p^2/(E+m);  p = sqrt(T(T+2m));  T = E - m exactly
-func (b Body) motion() (p, t, e num.DD) {
-	m := num.FromFloat(b.Mass)
-	switch b.Given {
-	case ByKinetic:
-		t = num.FromFloat(b.Value)
-		return t.Mul(t.AddFloat(2 * b.Mass)).Sqrt(), t, m.AddFloat(b.Value)
-	case ByTotal:
-		t = num.Sum2(b.Value, -b.Mass)
-		return t.Mul(num.Sum2(b.Value, b.Mass)).Sqrt(), t, num.FromFloat(b.Value)
-	case ByMomentum:
-	}
-	p = num.FromFloat(b.Value)
-	e = p.Square().Add(m.Square()).Sqrt()
-	if !e.IsZero() {
-		t = p.Square().Div(e.Add(m))
-	}
-	return p, t, e
-}
-
-func (b Body) check(op, field string) error {
-	if err := checkSize(op, field+".mass_gev", b.Mass); err != nil {
-		return err
-	}
-	switch b.Given {
-	case ByMomentum:
-		return checkSize(op, field+".momentum_gev", b.Value)
-	case ByKinetic:
-		return checkSize(op, field+".kinetic_energy_gev", b.Value)
-	case ByTotal:
-		if !(b.Value >= b.Mass) {
-			return fault.Number(field+".total_energy_gev", b.Value, ">= mass "+fault.Text(b.Mass)).In(op)
-		}
-		return checkSize(op, field+".total_energy_gev", b.Value)
-	}
-	return fault.Number(field+".given", float64(b.Given), "momentum, kinetic or total energy").In(op)
-}
+func checkSize(op, field string, x float64) error { return breakup.CheckSize(op, field, x) }
 
 // OnTarget returns the collision of a beam along z with a target at rest. The frame of
 // the laboratory is that of the target.

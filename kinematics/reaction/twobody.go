@@ -36,8 +36,9 @@ func (c Collision) TwoBody(first, second float64) (TwoBody, error) {
 	r.legs[1] = c.leg(r.over, m4, m3, first, second)
 	r.initial = c.initialMomentum()
 	r.final = r.legs[0].Momentum()
-	r.ends[0] = c.ends(m3, m4, r.initial, r.final)
-	r.ends[1] = c.ends(m4, m3, r.initial, r.final)
+	m1, m2 := num.FromFloat(c.mass[0]), num.FromFloat(c.mass[1])
+	r.ends[0] = ends(c.sys.W, m1, m2, m3, m4, r.initial, r.final)
+	r.ends[1] = ends(c.sys.W, m1, m2, m4, m3, r.initial, r.final)
 	return r, nil
 }
 

@@ -153,10 +153,7 @@ func (r *TwoBody) atLab(v Variable, leg *breakup.Leg, x float64) []breakup.Direc
 	var t num.DD
 	switch v {
 	case LabAngle:
-		if r.collision.tilt != 0 {
-			return leg.AtLabAngle(math.Pi - x)
-		}
-		return leg.AtLabAngle(x)
+		return leg.AtLabAngle(x, r.collision.tilt != 0)
 	case LabTotal:
 		t = mass.Neg().AddFloat(x)
 	case LabKinetic:

@@ -33,7 +33,8 @@ func (e transferEnds) at(d breakup.Direction, scale num.DD) (t, prime float64) {
 	return e.backward.Add(scale.Mul(d.Fore)).Float(), distance.Float()
 }
 
-// ends returns the ends of t = (p1 - p3)^2 where body 3 of mass m3 recoils against m4:
+// ends returns the ends of t = (p1 - p3)^2 of m1 m2 -> m3 m4 at the total mass w, with
+// the momenta of the initial and the final bodies in the centre-of-mass frame:
 //
 //	t = (E1* - E3*)^2 - (p1* -+ p3*)^2 = (a - b)(a + b)
 //	a = E1* - E3* = (m1^2 - m3^2 - m2^2 + m4^2)/(2 sqrt(s))
@@ -54,13 +55,12 @@ func (e transferEnds) at(d breakup.Direction, scale num.DD) (t, prime float64) {
 // the right over s t. Source of the latter: E. Byckling and K. Kajantie, Particle
 // Kinematics (1973), chapter IV (from memory; it follows from the equation of the
 // boundary of the physical region, which is quadratic in t).
-func (c *Collision) ends(m3, m4, initial, final num.DD) transferEnds {
-	m1, m2 := num.FromFloat(c.mass[0]), num.FromFloat(c.mass[1])
+func ends(w, m1, m2, m3, m4, initial, final num.DD) transferEnds {
 	d13, d24 := squaresDifference(m1, m3), squaresDifference(m2, m4)
 	d12, d34 := squaresDifference(m1, m2), squaresDifference(m3, m4)
-	s := c.sys.W.Square()
+	s := w.Square()
 	top := d13.Sub(d24)
-	a := top.Div(c.sys.W).Scale(-1)
+	a := top.Div(w).Scale(-1)
 	far := initial.Add(final)
 	backward := a.Sub(far).Mul(a.Add(far))
 	var near num.DD
@@ -68,17 +68,17 @@ func (c *Collision) ends(m3, m4, initial, final num.DD) transferEnds {
 		gap := s.Mul(d13.Add(d24).Neg()).Scale(1).Add(top.Mul(d12.Add(d34)))
 		near = gap.Div(s.Mul(far)).Scale(-2)
 	}
-	ends := transferEnds{forward: a.Sub(near).Mul(a.Add(near)), backward: backward}
+	out := transferEnds{forward: a.Sub(near).Mul(a.Add(near)), backward: backward}
 	cross, other := m1.Mul(m4), m2.Mul(m3)
 	product := d13.Mul(d24).Add(squaresDifference(cross, other).Mul(d12.Sub(d34)).Div(s))
 	size := a.Square().Hi
 	switch {
-	case undecided(ends.forward.Hi, size) && !ends.backward.IsZero():
-		ends.forward = product.Div(ends.backward)
-	case undecided(ends.backward.Hi, size) && !ends.forward.IsZero():
-		ends.backward = product.Div(ends.forward)
+	case undecided(out.forward.Hi, size) && !out.backward.IsZero():
+		out.forward = product.Div(out.backward)
+	case undecided(out.backward.Hi, size) && !out.forward.IsZero():
+		out.backward = product.Div(out.forward)
 	}
-	return ends
+	return out
 }
 
 // squaresDifference returns a^2 - b^2 = (a-b)(a+b).

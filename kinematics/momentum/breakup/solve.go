@@ -27,8 +27,8 @@ func (l *Leg) MaxAngle() float64 {
 }
 
 // AtLabAngle returns the directions in the rest frame that lead to the laboratory
-// angle theta from P, within 0..pi, the one with the largest laboratory momentum
-// first: none beyond the largest angle, one or two.
+// angle theta within 0..pi, from P or, if against, from -P: none beyond the largest
+// angle, one or two, the one with the largest laboratory momentum first.
 //
 // The laboratory momentum solves
 //
@@ -42,13 +42,16 @@ func (l *Leg) MaxAngle() float64 {
 //
 // Source: E. Byckling and K. Kajantie, Particle Kinematics (1973), section III.4
 // (from memory).
-func (l *Leg) AtLabAngle(theta float64) []Direction {
-	if l.momentum.IsZero() {
-		return l.atThreshold(theta)
-	}
+func (l *Leg) AtLabAngle(theta float64, against bool) []Direction {
 	sin, cos := num.FromFloat(theta).Sincos()
 	if theta == math.Pi { // The double next to pi stands for pi.
 		sin, cos = num.DD{}, num.FromFloat(-1)
+	}
+	if against {
+		cos, theta = cos.Neg(), math.Pi-theta
+	}
+	if l.momentum.IsZero() {
+		return l.atThreshold(theta, sin, cos)
 	}
 	product := l.carry.Mul(l.mass.Mul(l.sys.E).Add(l.sys.W.Mul(l.energy))).Scale(-1)
 	mp, wp := l.mass.Mul(l.sys.P), l.sys.W.Mul(l.momentum)
@@ -84,14 +87,14 @@ func (l *Leg) AtLabAngle(theta float64) []Direction {
 
 // atThreshold answers AtLabAngle for p* = 0: the body moves with the system, and
 // all directions in the rest frame lead to the same motion.
-func (l *Leg) atThreshold(theta float64) []Direction {
-	if l.sys.P.IsZero() {
+func (l *Leg) atThreshold(theta float64, sin, cos num.DD) []Direction {
+	switch {
+	case l.sys.P.IsZero():
 		return []Direction{AtAngle(theta)}
+	case sin.IsZero() && cos.Sign() > 0:
+		return []Direction{Along()}
 	}
-	if theta != 0 {
-		return nil
-	}
-	return []Direction{Along()}
+	return nil
 }
 
 // withMomenta returns the directions of the bodies with the given positive laboratory
