@@ -116,7 +116,7 @@ func (ps *PhaseSpace) drawMasses(s *random.Stream, m float64) float64 {
 	for k := 1; k < n; k++ {
 		// The excess of each split is its own quantity, never a difference of
 		// masses that both hold the sums.
-		excess := (r[k] - r[k-1]) * t
+		excess := float64((r[k] - r[k-1]) * t)
 		if k < n-1 {
 			ps.rest[k] = ps.sum[k] + float64(r[k]*t)
 			w *= t
@@ -134,7 +134,7 @@ func (ps *PhaseSpace) drawMasses(s *random.Stream, m float64) float64 {
 //
 //	p = sqrt(q (q + 2a) (q + 2b) (m + a + b)) / (2m)
 func splitMomentum(q, m, a, b float64) float64 {
-	return math.Sqrt(q*(q+2*a)*(q+2*b)*(m+a+b)) / (2 * m)
+	return math.Sqrt(q*(q+(a+a))*(q+(b+b))*(m+a+b)) / (m + m)
 }
 
 // ceiling is an upper bound of the weight at a total mass m: every split has at

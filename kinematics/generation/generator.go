@@ -1,0 +1,225 @@
+package generation
+
+import (
+	"math"
+	"strconv"
+
+	"example.org/kinegate/kinematics/event"
+	"example.org/kinegate/kinematics/fault"
+	"example.org/kinegate/kinematics/num/random"
+)
+
+// MaxAttempts bounds the redraws of one event. An event that uses them up gets
+// weight 0 and is counted as exhausted.
+const MaxAttempts = 100_000
+
+// Generator makes the events of one configuration. It is immutable and may be
+// used by any number of goroutines at once.
+type Generator struct {
+	config  Config
+	source  source
+	plans   []*plan
+	mixture []float64 // running sums of the fractions
+}
+
+// New prepares a generator. It returns a fault.List with every fault of the
+// configuration, or a BelowThreshold fault for a channel that is closed at
+// every energy of the beam.
+func New(config Config) (*Generator, error) {
+	if err := config.Validate(); err != nil {
+		return nil, err
+	}
+	g := &Generator{config: config, source: config.Initial.source()}
+	fractions := make([]float64, 0, len(config.Channels))
+	var closed fault.List
+	for i := range config.Channels {
+		channel := &config.Channels[i]
+		fractions = append(fractions, channel.Fraction)
+		p := newPlan(channel)
+		g.plans = append(g.plans, p)
+		if f := g.open(p); f != nil {
+			f.Field = "channels[" + strconv.Itoa(i) + "]"
+			f.Value = channel.Name
+			closed = append(closed, f)
+			continue
+		}
+		g.prepare(p)
+	}
+	if len(closed) > 0 {
+		return nil, closed
+	}
+	if len(fractions) > 1 {
+		g.mixture = cumulate(fractions)
+	}
+	return g, nil
+}
+
+// open sets the plan's threshold, or returns the fault of a closed channel.
+func (g *Generator) open(p *plan) *fault.Error {
+	_, high := g.source.limits()
+	if !(high > p.root.floors) {
+		return fault.New(fault.BelowThreshold, "", "", "").In("generation.New").Because(
+			"the channel is closed: sqrt(s) reaches " + fault.Text(high) + " GeV, the lightest final state needs " +
+				fault.Text(p.root.floors) + " GeV, " + fault.Text(p.root.floors-high) + " GeV more")
+	}
+	p.threshold = p.root.floors
+	if p.channel.Energy.Kind != PhaseSpaceRate && high > p.root.nominal {
+		p.threshold = max(p.threshold, p.root.nominal)
+	}
+	return nil
+}
+
+// prepare computes what the plan needs of the energies.
+func (g *Generator) prepare(p *plan) {
+	low, high := g.source.limits()
+	low = max(low, p.threshold)
+	if p.channel.Energy.Kind == PhaseSpaceRate {
+		p.joint = g.jointCeiling(p, low, high)
+	}
+	if g.config.Weighted && p.channel.Energy.Kind != PhaseSpaceRate && low < high {
+		p.norm = g.meanFractions(p, low, high)
+	}
+}
+
+// jointCeiling bounds weight over flux for all energies: its largest value on a
+// grid of the energies that can occur, two per cent up.
+func (g *Generator) jointCeiling(p *plan, low, high float64) float64 {
+	top := 0.0
+	scan := random.New(0, random.Bounds, 0)
+	const grid = 4000
+	for range grid {
+		st := g.source.draw(&scan)
+		if st.m > low {
+			top = max(top, p.root.ceiling(p.nodes, st.m)/st.flux())
+		}
+	}
+	// The ends, which a sample misses: the flux factor of a beam is smooth, so
+	// that of the nearest sampled state serves for the weight at the end.
+	return 1.02 * max(top, g.endCeiling(p, high))
+}
+
+// endCeiling is the ceiling at the highest energy over its flux.
+func (g *Generator) endCeiling(p *plan, high float64) float64 {
+	scan := random.New(0, random.Bounds, 1)
+	var best state
+	for range 1000 {
+		if st := g.source.draw(&scan); st.m > best.m {
+			best = st
+		}
+	}
+	return p.root.ceiling(p.nodes, high) / best.flux()
+}
+
+// meanFractions tabulates the mean of weight over ceiling against sqrt(s), so
+// that weighted events over a spread of energies follow the asked rate. Two
+// thousand draws a node give it to about one per cent; the nodes lie closer
+// towards the threshold.
+func (g *Generator) meanFractions(p *plan, low, high float64) *Curve {
+	const nodes, draws = 48, 2000
+	w := g.newWorker()
+	c := &Curve{}
+	for i := range nodes + 1 {
+		x := float64(i) / nodes
+		m := between(low, high, x*x)
+		if i == 0 {
+			m = between(low, high, 1e-6)
+		}
+		s := random.New(0, random.Bounds, int64(2+i))
+		sum := 0.0
+		for range draws {
+			sum += p.root.draw(&s, p.nodes, m, w.masses, &w.spaces[0])
+		}
+		c.X = append(c.X, m)
+		c.Y = append(c.Y, sum/draws/p.root.ceiling(p.nodes, m))
+	}
+	return c
+}
+
+// Channels is the number of channels.
+func (g *Generator) Channels() int { return len(g.plans) }
+
+// Branching is the product of the branching fractions of a channel's decays,
+// which weighted events carry.
+func (g *Generator) Branching(channel int) float64 { return g.plans[channel].branching }
+
+// Stats counts what Fill did. Stats of slices add up.
+type Stats struct {
+	// Events made, and how many of them of weight 0.
+	Events, Empty int64
+	// Attempts of the production, redraws included.
+	Attempts int64
+	// Overflows above the unweighting bound, and the largest weight among them.
+	Overflows int64
+	Largest   float64
+	// Exhausted events used MaxAttempts up.
+	Exhausted int64
+	// SumWeights and SumSquares of the events' weights.
+	SumWeights, SumSquares float64
+}
+
+// Effective is the number of unweighted events of the same statistical power,
+// (sum w)^2 / sum w^2.
+func (s *Stats) Effective() float64 {
+	if s.SumSquares == 0 {
+		return 0
+	}
+	return s.SumWeights * s.SumWeights / s.SumSquares
+}
+
+// Efficiency is the number of events that are not empty over the attempts.
+func (s *Stats) Efficiency() float64 {
+	if s.Attempts == 0 {
+		return 0
+	}
+	return float64(s.Events-s.Empty) / float64(s.Attempts)
+}
+
+// Add adds the counts of another slice.
+func (s *Stats) Add(other Stats) {
+	s.Events += other.Events
+	s.Empty += other.Empty
+	s.Attempts += other.Attempts
+	s.Overflows += other.Overflows
+	s.Largest = max(s.Largest, other.Largest)
+	s.Exhausted += other.Exhausted
+	s.SumWeights += other.SumWeights
+	s.SumSquares += other.SumSquares
+}
+
+// Fill replaces the content of truth by the events first to first + count - 1.
+// Domain: count >= 0, first + count - 1 within int64. Apart from the memory of
+// truth, which is kept between calls, it allocates a fixed amount per call.
+func (g *Generator) Fill(first int64, count int, truth *event.Truth) (Stats, error) {
+	truth.Reset()
+	if count < 0 || count > 0 && first > math.MaxInt64-int64(count)+1 {
+		return Stats{}, fault.New(fault.Invalid, "event_count", strconv.Itoa(count), ">= 0, the last event's number within 64 bits").In("generation.Fill")
+	}
+	w := g.newWorker()
+	for i := range count {
+		w.event(first+int64(i), truth)
+	}
+	return w.stats, nil
+}
+
+// MeasureBound draws n points of a channel and returns the largest and the mean
+// weight as fractions of the analytic ceiling. The largest, with some room
+// above, serves as the channel's Bound: the efficiency is then mean over bound.
+func (g *Generator) MeasureBound(channel, n int) (largest, mean float64, err error) {
+	if channel < 0 || channel >= len(g.plans) {
+		return 0, 0, fault.New(fault.Invalid, "channel", strconv.Itoa(channel), "0 to "+strconv.Itoa(len(g.plans)-1)).In("generation.MeasureBound")
+	}
+	if n < 1 {
+		return 0, 0, fault.New(fault.Invalid, "event_count", strconv.Itoa(n), ">= 1").In("generation.MeasureBound")
+	}
+	w := g.newWorker()
+	w.plan = g.plans[channel]
+	w.spaces = w.all[channel]
+	sum := 0.0
+	for i := range n {
+		w.stream = random.New(g.config.Seed, random.Bounds, int64(i))
+		f := w.fraction()
+		largest = max(largest, f)
+		sum += f
+	}
+	return largest, sum / float64(n), nil
+}

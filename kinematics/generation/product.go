@@ -1,0 +1,146 @@
+package generation
+
+import (
+	"math"
+	"strconv"
+
+	"example.org/kinegate/kinematics/fault"
+)
+
+// Product is a particle that a reaction or a decay makes.
+type Product struct {
+	// Number is the Monte Carlo particle number.
+	Number int64
+	// MassGeV is the nominal mass.
+	MassGeV float64
+	// WidthGeV is the total width; 0 means sharp: always the nominal mass. A
+	// particle without a stated decay is sharp too.
+	WidthGeV float64
+	// Shape is the line shape of a broad particle.
+	Shape LineShape
+	// MeanLifeS is the mean life at rest in seconds; 0 means that it decays where
+	// it came into being. It counts only with a stated decay.
+	MeanLifeS float64
+	// Decay is how it decays; nil for a particle that reaches the detector.
+	Decay *Decay
+}
+
+// Decay is the decay of a Product.
+type Decay struct {
+	// Products are the daughters, 2 to MaxBodies.
+	Products []Product
+	// Density shapes the decay; nil means phase space.
+	Density Density
+	// CosTheta, for two daughters only, is the density of cos theta between the
+	// first daughter, in the decaying particle's rest frame, and the particle's
+	// own direction in its parent's rest frame, or in the centre of mass for a
+	// product of the reaction (the helicity frame); nil means isotropic.
+	CosTheta *Curve
+	// Branching is the branching fraction, which weights carry; 0 means 1.
+	Branching float64
+}
+
+// lightest is the mass of the lightest stated final state.
+func (p *Product) lightest() float64 {
+	if !p.broad() {
+		return p.MassGeV
+	}
+	sum := 0.0
+	for i := range p.Decay.Products {
+		sum += p.Decay.Products[i].lightest()
+	}
+	return max(sum, p.Shape.LowGeV)
+}
+
+// broad reports whether the mass is drawn.
+func (p *Product) broad() bool { return p.WidthGeV > 0 && p.Decay != nil }
+
+// maxDepth bounds the nesting of decays.
+const maxDepth = 16
+
+// productFaults appends what is wrong with the products of a reaction or decay.
+func productFaults(list fault.List, field string, products []Product, depth int) fault.List {
+	if depth > maxDepth {
+		return append(list, fault.New(fault.Invalid, field, "", "decays nested at most "+strconv.Itoa(maxDepth)+" deep"))
+	}
+	if len(products) < 2 || len(products) > MaxBodies {
+		list = append(list, fault.New(fault.Invalid, field+".length", strconv.Itoa(len(products)), "2 to "+strconv.Itoa(MaxBodies)))
+	}
+	for i := range products {
+		list = products[i].faults(list, field+"["+strconv.Itoa(i)+"]", depth)
+	}
+	return list
+}
+
+func (p *Product) faults(list fault.List, field string, depth int) fault.List {
+	known := len(list)
+	for _, v := range []struct {
+		name  string
+		value float64
+	}{
+		{"mass_gev", p.MassGeV}, {"width_gev", p.WidthGeV}, {"mean_life_s", p.MeanLifeS},
+		{"shape.low_gev", p.Shape.LowGeV}, {"shape.high_gev", p.Shape.HighGeV}, {"shape.radius_per_gev", p.Shape.RadiusPerGeV},
+	} {
+		if !(v.value >= 0 && v.value <= math.MaxFloat64) {
+			list = append(list, fault.Number(field+"."+v.name, v.value, ">= 0 and finite"))
+		}
+	}
+	if p.Shape.L < 0 || p.Shape.L > 2 {
+		list = append(list, fault.New(fault.Invalid, field+".shape.l", strconv.Itoa(p.Shape.L), "0 to 2"))
+	}
+	if p.Decay == nil {
+		return list
+	}
+	d := p.Decay
+	if !(d.Branching >= 0 && d.Branching <= 1) {
+		list = append(list, fault.Number(field+".decay.branching", d.Branching, "0 to 1"))
+	}
+	list = productFaults(list, field+".decay.products", d.Products, depth+1)
+	if d.Density != nil {
+		list = d.Density.faults(list, field+".decay.density", d.Products)
+	}
+	if d.CosTheta != nil {
+		if len(d.Products) != 2 {
+			list = append(list, fault.New(fault.Invalid, field+".decay.cos_theta", strconv.Itoa(len(d.Products))+" daughters", "2 daughters"))
+		}
+		list = d.CosTheta.faults(list, field+".decay.cos_theta", -1, 1)
+	}
+	if len(list) > known {
+		return list // masses mean nothing yet
+	}
+	return p.massFaults(list, field)
+}
+
+// massFaults checks that the particle can decay as stated.
+func (p *Product) massFaults(list fault.List, field string) fault.List {
+	sum := 0.0
+	for i := range p.Decay.Products {
+		sum += p.Decay.Products[i].lightest()
+	}
+	if !p.broad() {
+		if !(p.MassGeV > sum) {
+			f := fault.New(fault.BelowThreshold, field+".decay", fault.Text(p.MassGeV), "a mass > "+fault.Text(sum)+" GeV, the sum of the lightest daughters")
+			list = append(list, f)
+		}
+		return list
+	}
+	r := newResonance(p.Shape, p.MassGeV, p.WidthGeV, sum, nil)
+	if !(r.high > r.low) {
+		list = append(list, fault.New(fault.Infeasible, field+".shape.high_gev", fault.Text(r.high), "> "+fault.Text(r.low)+", the lowest mass"))
+	}
+	return list
+}
+
+// branching is the product of the branching fractions of a chain.
+func branching(products []Product) float64 {
+	b := 1.0
+	for i := range products {
+		if d := products[i].Decay; d != nil {
+			if d.Branching > 0 {
+				b *= d.Branching
+			}
+			b *= branching(d.Products)
+		}
+	}
+	return b
+}
