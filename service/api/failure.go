@@ -78,17 +78,20 @@ func In(prefix string, err error) *Failure {
 	f := *Explain(err)
 	f.Violations = append([]Violation(nil), f.Violations...)
 	for i := range f.Violations {
-		v := &f.Violations[i]
-		switch {
-		case v.Field == "":
-			v.Field = prefix
-		case strings.HasPrefix(v.Field, "["):
-			v.Field = prefix + v.Field
-		default:
-			v.Field = prefix + "." + v.Field
-		}
+		f.Violations[i].Field = join(prefix, f.Violations[i].Field)
 	}
 	return &f
+}
+
+// join puts a path in front of a field, which may be empty or an index.
+func join(prefix, field string) string {
+	switch {
+	case field == "":
+		return prefix
+	case strings.HasPrefix(field, "["):
+		return prefix + field
+	}
+	return prefix + "." + field
 }
 
 // atField returns the failure with one field path in place of the core's names.
