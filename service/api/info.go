@@ -22,18 +22,7 @@ func (s *infoService) GetInfo(context.Context, *kinegatev1.GetInfoRequest) (*kin
 		TableVersion:    s.deps.Table.Version(),
 		TableDigest:     s.deps.Table.Digest(),
 		Caution:         Caution,
-		Limits:          limitsMessage(s.deps.Limits),
+		Limits:          limitsMessage(s.deps.Limits, s.deps.Limits.blocks()),
 		Selections:      s.deps.Library.list(),
 	}, nil
-}
-
-// limitsMessage converts the limits that callers must keep.
-func limitsMessage(l Limits) *kinegatev1.Limits {
-	return &kinegatev1.Limits{
-		BlockByteCount:   int64(l.BlockBytes),
-		BlockEventCount:  int64(l.BlockEvents),
-		BlockObjectCount: int64(l.BlockObjects),
-		EventObjectCount: int64(l.EventObjects),
-		MessageByteCount: int64(l.MessageBytes),
-	}
 }

@@ -1,6 +1,13 @@
 package api
 
-import "example.org/kinegate/kinematics/event"
+import (
+	"strconv"
+
+	"example.org/kinegate/kinematics/event"
+	"example.org/kinegate/kinematics/fault"
+	"example.org/kinegate/kinematics/selection"
+	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+)
 
 // Limits are the sizes that hold for unary calls and streams alike. All of them
 // apply at once.
@@ -11,6 +18,8 @@ type Limits struct {
 	BlockBytes int
 	// BlockEvents and BlockObjects are the most events and object rows of a block.
 	BlockEvents, BlockObjects int
+	// BlockCandidates is the most beam candidates of a block.
+	BlockCandidates int
 	// EventObjects is the most objects of an event; one above it gets a status.
 	EventObjects int
 	// DecodedBytes bounds the memory that one message may need once decoded.
@@ -29,10 +38,91 @@ func DefaultLimits() Limits {
 		BlockBytes:   2 * mebi,
 		BlockEvents:  event.MaxEvents,
 		BlockObjects: event.MaxObjects,
-		EventObjects: event.MaxObjectsPerEvent,
-		DecodedBytes: 16 * mebi,
-		CreditBlocks: 8,
-		CreditBytes:  4 * mebi,
-		PoolBytes:    64 * mebi,
+		// A candidate is a row like an object.
+		BlockCandidates: event.MaxObjects,
+		EventObjects:    event.MaxObjectsPerEvent,
+		DecodedBytes:    16 * mebi,
+		CreditBlocks:    8,
+		CreditBytes:     4 * mebi,
+		PoolBytes:       64 * mebi,
+	}
+}
+
+// blockLimits are the limits of the blocks of one caller: the server's own, or below.
+type blockLimits struct{ bytes, events, objects, candidates int64 }
+
+// blocks returns the limits of blocks.
+func (l Limits) blocks() blockLimits {
+	return blockLimits{
+		bytes: int64(l.BlockBytes), events: int64(l.BlockEvents),
+		objects: int64(l.BlockObjects), candidates: int64(l.BlockCandidates),
+	}
+}
+
+// narrow returns the limits that a caller promises to keep.
+func (b blockLimits) narrow(promise *kinegatev1.Limits) (blockLimits, error) {
+	var faults fault.List
+	for _, x := range []struct {
+		name    string
+		promise int64
+		limit   *int64
+	}{
+		{"block_byte_count", promise.GetBlockByteCount(), &b.bytes},
+		{"block_event_count", promise.GetBlockEventCount(), &b.events},
+		{"block_object_count", promise.GetBlockObjectCount(), &b.objects},
+		{"block_candidate_count", promise.GetBlockCandidateCount(), &b.candidates},
+	} {
+		switch {
+		case x.promise < 0:
+			faults = append(faults, fault.New(fault.Invalid, "limits."+x.name, strconv.FormatInt(x.promise, 10), ">= 0"))
+		case x.promise > 0:
+			*x.limit = min(*x.limit, x.promise)
+		}
+	}
+	return b, faults.Err()
+}
+
+// sizeOf returns the limits that just hold a block.
+func sizeOf(bytes int64, block *event.Block) blockLimits {
+	size := blockLimits{bytes: bytes, events: int64(block.Events()), objects: int64(block.Rows())}
+	if block.Beam != nil {
+		size.candidates = int64(len(block.Beam.EnergyGeV))
+	}
+	return size
+}
+
+// check refuses a block beyond the limits, naming both numbers.
+func (b blockLimits) check(bytes int64, block *event.Block) error {
+	size := sizeOf(bytes, block)
+	for _, x := range []struct {
+		what          string
+		actual, limit int64
+	}{
+		{"the size of the block in bytes", size.bytes, b.bytes},
+		{"the number of events of the block", size.events, b.events},
+		{"the number of objects of the block", size.objects, b.objects},
+		{"the number of beam candidates of the block", size.candidates, b.candidates},
+	} {
+		if x.actual > x.limit {
+			return OverLimit(BlockInvalid, x.what, x.actual, x.limit, "send smaller blocks")
+		}
+	}
+	return nil
+}
+
+// form is the limits in the core's form.
+func (b blockLimits) form() selection.Limits {
+	return selection.Limits{BlockBytes: b.bytes, Events: b.events, Objects: b.objects, Candidates: b.candidates}
+}
+
+// limitsMessage tells callers the limits.
+func limitsMessage(l Limits, b blockLimits) *kinegatev1.Limits {
+	return &kinegatev1.Limits{
+		BlockByteCount:      b.bytes,
+		BlockEventCount:     b.events,
+		BlockObjectCount:    b.objects,
+		BlockCandidateCount: b.candidates,
+		EventObjectCount:    int64(l.EventObjects),
+		MessageByteCount:    int64(l.MessageBytes),
 	}
 }

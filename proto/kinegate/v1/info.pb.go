@@ -174,8 +174,10 @@ type Limits struct {
 	EventObjectCount int64 `protobuf:"varint,4,opt,name=event_object_count,json=eventObjectCount,proto3" json:"event_object_count,omitempty"`
 	// Largest message of the transport.
 	MessageByteCount int64 `protobuf:"varint,5,opt,name=message_byte_count,json=messageByteCount,proto3" json:"message_byte_count,omitempty"`
-	unknownFields    protoimpl.UnknownFields
-	sizeCache        protoimpl.SizeCache
+	// Most beam candidates in a block.
+	BlockCandidateCount int64 `protobuf:"varint,6,opt,name=block_candidate_count,json=blockCandidateCount,proto3" json:"block_candidate_count,omitempty"`
+	unknownFields       protoimpl.UnknownFields
+	sizeCache           protoimpl.SizeCache
 }
 
 func (x *Limits) Reset() {
@@ -239,6 +241,13 @@ func (x *Limits) GetEventObjectCount() int64 {
 func (x *Limits) GetMessageByteCount() int64 {
 	if x != nil {
 		return x.MessageByteCount
+	}
+	return 0
+}
+
+func (x *Limits) GetBlockCandidateCount() int64 {
+	if x != nil {
+		return x.BlockCandidateCount
 	}
 	return 0
 }
@@ -322,13 +331,14 @@ const file_kinegate_v1_info_proto_rawDesc = "" +
 	"\x06limits\x18\x06 \x01(\v2\x13.kinegate.v1.LimitsR\x06limits\x12;\n" +
 	"\n" +
 	"selections\x18\a \x03(\v2\x1b.kinegate.v1.NamedSelectionR\n" +
-	"selections\"\xe8\x01\n" +
+	"selections\"\x9c\x02\n" +
 	"\x06Limits\x12(\n" +
 	"\x10block_byte_count\x18\x01 \x01(\x03R\x0eblockByteCount\x12*\n" +
 	"\x11block_event_count\x18\x02 \x01(\x03R\x0fblockEventCount\x12,\n" +
 	"\x12block_object_count\x18\x03 \x01(\x03R\x10blockObjectCount\x12,\n" +
 	"\x12event_object_count\x18\x04 \x01(\x03R\x10eventObjectCount\x12,\n" +
-	"\x12message_byte_count\x18\x05 \x01(\x03R\x10messageByteCount\"`\n" +
+	"\x12message_byte_count\x18\x05 \x01(\x03R\x10messageByteCount\x122\n" +
+	"\x15block_candidate_count\x18\x06 \x01(\x03R\x13blockCandidateCount\"`\n" +
 	"\x0eNamedSelection\x12\x12\n" +
 	"\x04name\x18\x01 \x01(\tR\x04name\x12\x18\n" +
 	"\adigests\x18\x02 \x03(\tR\adigests\x12 \n" +

@@ -3176,7 +3176,13 @@ type JudgeOpen struct {
 	// than judged; absent means no limit. Not part of the digest.
 	LatencyBudgetS *float64 `protobuf:"fixed64,4,opt,name=latency_budget_s,json=latencyBudgetS,proto3,oneof" json:"latency_budget_s,omitempty"`
 	// Let a reloaded selection of the same name take over at a block boundary.
-	Follow        bool `protobuf:"varint,5,opt,name=follow,proto3" json:"follow,omitempty"`
+	Follow bool `protobuf:"varint,5,opt,name=follow,proto3" json:"follow,omitempty"`
+	// Limits that the blocks to come will keep, where they are below the
+	// server's own; a member that is 0 means the server's. The largest possible
+	// reply follows from them, and an opening whose largest reply could pass the
+	// limit of the transport is refused: smaller blocks leave room for more
+	// entries. A block that breaks them is rejected.
+	Limits        *Limits `protobuf:"bytes,6,opt,name=limits,proto3" json:"limits,omitempty"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
 }
@@ -3246,6 +3252,13 @@ func (x *JudgeOpen) GetFollow() bool {
 	return false
 }
 
+func (x *JudgeOpen) GetLimits() *Limits {
+	if x != nil {
+		return x.Limits
+	}
+	return nil
+}
+
 // JudgeOpened is the server's answer to JudgeOpen.
 type JudgeOpened struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
@@ -3253,7 +3266,7 @@ type JudgeOpened struct {
 	SelectionDigest string `protobuf:"bytes,1,opt,name=selection_digest,json=selectionDigest,proto3" json:"selection_digest,omitempty"`
 	// What the caller may have unanswered.
 	Credit *Credit `protobuf:"bytes,2,opt,name=credit,proto3" json:"credit,omitempty"`
-	// Limits of one block.
+	// Limits of one block on this stream.
 	Limits *Limits `protobuf:"bytes,3,opt,name=limits,proto3" json:"limits,omitempty"`
 	// The hypotheses as understood.
 	Hypotheses    []*HypothesisOutline `protobuf:"bytes,4,rep,name=hypotheses,proto3" json:"hypotheses,omitempty"`
@@ -3726,13 +3739,14 @@ const file_kinegate_v1_selection_proto_rawDesc = "" +
 	"\averdict\x18\x02 \x01(\v2\x19.kinegate.v1.VerdictBlockH\x00R\averdict\x126\n" +
 	"\theartbeat\x18\x03 \x01(\v2\x16.kinegate.v1.HeartbeatH\x00R\theartbeat\x123\n" +
 	"\bdraining\x18\x04 \x01(\v2\x15.kinegate.v1.DrainingH\x00R\bdrainingB\a\n" +
-	"\x05frame\"\xfe\x01\n" +
+	"\x05frame\"\xab\x02\n" +
 	"\tJudgeOpen\x12:\n" +
 	"\tselection\x18\x01 \x01(\v2\x1c.kinegate.v1.SelectionSourceR\tselection\x12%\n" +
 	"\x0efirst_sequence\x18\x02 \x01(\x03R\rfirstSequence\x122\n" +
 	"\aentries\x18\x03 \x01(\x0e2\x18.kinegate.v1.EntryDetailR\aentries\x12-\n" +
 	"\x10latency_budget_s\x18\x04 \x01(\x01H\x00R\x0elatencyBudgetS\x88\x01\x01\x12\x16\n" +
-	"\x06follow\x18\x05 \x01(\bR\x06followB\x13\n" +
+	"\x06follow\x18\x05 \x01(\bR\x06follow\x12+\n" +
+	"\x06limits\x18\x06 \x01(\v2\x13.kinegate.v1.LimitsR\x06limitsB\x13\n" +
 	"\x11_latency_budget_s\"\xd2\x01\n" +
 	"\vJudgeOpened\x12)\n" +
 	"\x10selection_digest\x18\x01 \x01(\tR\x0fselectionDigest\x12+\n" +
@@ -3910,20 +3924,21 @@ var file_kinegate_v1_selection_proto_depIdxs = []int32{
 	45, // 60: kinegate.v1.JudgeResponse.draining:type_name -> kinegate.v1.Draining
 	37, // 61: kinegate.v1.JudgeOpen.selection:type_name -> kinegate.v1.SelectionSource
 	3,  // 62: kinegate.v1.JudgeOpen.entries:type_name -> kinegate.v1.EntryDetail
-	43, // 63: kinegate.v1.JudgeOpened.credit:type_name -> kinegate.v1.Credit
-	51, // 64: kinegate.v1.JudgeOpened.limits:type_name -> kinegate.v1.Limits
-	34, // 65: kinegate.v1.JudgeOpened.hypotheses:type_name -> kinegate.v1.HypothesisOutline
-	31, // 66: kinegate.v1.SelectionService.CheckSelection:input_type -> kinegate.v1.CheckSelectionRequest
-	35, // 67: kinegate.v1.SelectionService.JudgeBlock:input_type -> kinegate.v1.JudgeBlockRequest
-	39, // 68: kinegate.v1.SelectionService.Judge:input_type -> kinegate.v1.JudgeRequest
-	32, // 69: kinegate.v1.SelectionService.CheckSelection:output_type -> kinegate.v1.CheckSelectionResponse
-	36, // 70: kinegate.v1.SelectionService.JudgeBlock:output_type -> kinegate.v1.JudgeBlockResponse
-	40, // 71: kinegate.v1.SelectionService.Judge:output_type -> kinegate.v1.JudgeResponse
-	69, // [69:72] is the sub-list for method output_type
-	66, // [66:69] is the sub-list for method input_type
-	66, // [66:66] is the sub-list for extension type_name
-	66, // [66:66] is the sub-list for extension extendee
-	0,  // [0:66] is the sub-list for field type_name
+	51, // 63: kinegate.v1.JudgeOpen.limits:type_name -> kinegate.v1.Limits
+	43, // 64: kinegate.v1.JudgeOpened.credit:type_name -> kinegate.v1.Credit
+	51, // 65: kinegate.v1.JudgeOpened.limits:type_name -> kinegate.v1.Limits
+	34, // 66: kinegate.v1.JudgeOpened.hypotheses:type_name -> kinegate.v1.HypothesisOutline
+	31, // 67: kinegate.v1.SelectionService.CheckSelection:input_type -> kinegate.v1.CheckSelectionRequest
+	35, // 68: kinegate.v1.SelectionService.JudgeBlock:input_type -> kinegate.v1.JudgeBlockRequest
+	39, // 69: kinegate.v1.SelectionService.Judge:input_type -> kinegate.v1.JudgeRequest
+	32, // 70: kinegate.v1.SelectionService.CheckSelection:output_type -> kinegate.v1.CheckSelectionResponse
+	36, // 71: kinegate.v1.SelectionService.JudgeBlock:output_type -> kinegate.v1.JudgeBlockResponse
+	40, // 72: kinegate.v1.SelectionService.Judge:output_type -> kinegate.v1.JudgeResponse
+	70, // [70:73] is the sub-list for method output_type
+	67, // [67:70] is the sub-list for method input_type
+	67, // [67:67] is the sub-list for extension type_name
+	67, // [67:67] is the sub-list for extension extendee
+	0,  // [0:67] is the sub-list for field type_name
 }
 
 func init() { file_kinegate_v1_selection_proto_init() }

@@ -2,7 +2,6 @@ package main
 
 import (
 	"context"
-	"errors"
 	"fmt"
 	"io"
 	"os"
@@ -25,7 +24,8 @@ type program struct {
 const (
 	exitWell   = 0 // done
 	exitFailed = 1 // tried and failed
-	exitUsage  = 2 // not tried: arguments or configuration are at fault
+	exitUsage  = 2 // not tried: arguments, input or configuration are at fault
+	exitNo     = 3 // the answer is no: a closed channel, a faulty selection
 )
 
 // usageError is a fault of arguments or configuration.
@@ -42,12 +42,12 @@ func run(ctx context.Context, p program, arguments []string) int {
 	if err == nil {
 		return exitWell
 	}
-	// There is nobody to tell if the error cannot be written.
-	_, _ = fmt.Fprintln(p.err, "kinegate:", err)
-	if _, ok := errors.AsType[usageError](err); ok {
-		return exitUsage
+	text, code := explain(err)
+	if text != "" {
+		// There is nobody to tell if the error cannot be written.
+		_, _ = fmt.Fprintln(p.err, "kinegate:", text)
 	}
-	return exitFailed
+	return code
 }
 
 // rootCommand holds the commands together. Each has a file of its own.
@@ -76,6 +76,12 @@ func rootCommand(p program) *cobra.Command {
 // commands lists the commands in the order of their help.
 func commands(p program) []*cobra.Command {
 	return []*cobra.Command{
+		particleCommand(p),
+		reactionCommand(p),
+		decayCommand(p),
+		checkCommand(p),
+		judgeCommand(p),
+		demoCommand(p),
 		serveCommand(p),
 		versionCommand(p),
 	}

@@ -1,0 +1,155 @@
+package api
+
+import (
+	"context"
+	"time"
+
+	"google.golang.org/protobuf/proto"
+
+	"example.org/kinegate/kinematics/event"
+	"example.org/kinegate/kinematics/selection"
+	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+)
+
+// judging judges the blocks of one caller, one after the other.
+type judging struct {
+	service  *selectionService
+	compiled *compiledSelection
+	worker   *selection.Worker
+	detail   selection.Detail
+	limits   blockLimits
+	// follow names the selection whose newest version takes over; empty for none.
+	follow string
+	out    event.VerdictBlock
+}
+
+// newJudging finds and compiles the selection of a caller, whose blocks keep the
+// limits. A selection whose replies could pass the limit of the transport is refused.
+func (s *selectionService) newJudging(
+	source *kinegatev1.SelectionSource, entries kinegatev1.EntryDetail, limits blockLimits, follow bool,
+) (*judging, error) {
+	f := &former{}
+	j := &judging{service: s, detail: enumForm[selection.Detail](f, "entries", entries), limits: limits}
+	if err := f.faults.Err(); err != nil {
+		return nil, err
+	}
+	var c *compiledSelection
+	var err error
+	switch x := source.GetSource().(type) {
+	case *kinegatev1.SelectionSource_Inline:
+		if c, err = compile(x.Inline, s.deps.Table); err != nil {
+			return nil, selectionError(x.Inline.GetName(), In("selection.inline", err))
+		}
+	case *kinegatev1.SelectionSource_Named:
+		if c, err = s.library.find(x.Named); err != nil {
+			return nil, err
+		}
+		if follow {
+			j.follow = x.Named.GetName()
+		}
+	default:
+		f.need("selection", "empty", "inline or named")
+		return nil, f.faults
+	}
+	if largest, limit := c.largestReply(limits, j.detail), int64(s.deps.Limits.MessageBytes); largest > limit {
+		return nil, OverLimit(ReplyTooLarge, "the largest possible reply in bytes", largest, limit,
+			"promise smaller blocks, ask for fewer entries or record fewer observables")
+	}
+	j.use(c)
+	return j, nil
+}
+
+// use makes a selection the one that judges.
+func (j *judging) use(c *compiledSelection) {
+	j.compiled, j.worker = c, c.program.NewWorker(j.detail)
+}
+
+// eventsPerTurn is how many events are judged between two looks at the clock and
+// the context. Pair windows take microseconds an event, so a turn stays well below
+// the 50 ms within which cancelled work must stop.
+const eventsPerTurn = 64
+
+// block judges a block of a stream. Structural faults make a rejected verdict; the
+// error is the end of the context.
+func (j *judging) block(ctx context.Context, m *kinegatev1.EventBlock, bytes int64, deadline time.Time) (*kinegatev1.VerdictBlock, error) {
+	j.catchUp()
+	block, err := convertBlock(m, bytes, j.limits)
+	if err != nil {
+		return rejection(m.GetSequence(), j.compiled.digest, err), nil
+	}
+	return j.events(ctx, m.GetSequence(), block, deadline)
+}
+
+// events judges a sound block. Events left when the deadline passes are EXPIRED;
+// the zero deadline is none.
+func (j *judging) events(ctx context.Context, sequence int64, block *event.Block, deadline time.Time) (*kinegatev1.VerdictBlock, error) {
+	n := block.Events()
+	j.worker.Reset(&j.out)
+	for from := 0; from < n; from += eventsPerTurn {
+		if err := ctx.Err(); err != nil {
+			return nil, err
+		}
+		if !deadline.IsZero() && j.service.deps.Now().After(deadline) {
+			j.worker.Expire(n-from, &j.out)
+			break
+		}
+		release, err := j.service.turns.take(ctx)
+		if err != nil {
+			return nil, err
+		}
+		j.worker.Judge(block, from, min(from+eventsPerTurn, n), &j.out)
+		release()
+	}
+	return verdictBlock(sequence, j.compiled.digest, &j.out), nil
+}
+
+// catchUp takes a newer version of a followed selection at a block boundary. One
+// whose replies could grow too large is left alone; the digest shows it.
+func (j *judging) catchUp() {
+	if j.follow == "" {
+		return
+	}
+	newest, err := j.service.library.find(&kinegatev1.SelectionReference{Name: j.follow})
+	if err != nil || newest == j.compiled || newest.largestReply(j.limits, j.detail) > int64(j.service.deps.Limits.MessageBytes) {
+		return
+	}
+	j.use(newest)
+}
+
+// convertBlock reads a block within the limits.
+func convertBlock(m *kinegatev1.EventBlock, bytes int64, limits blockLimits) (*event.Block, error) {
+	block, err := eventBlock(m)
+	if err != nil {
+		return nil, Because(BlockInvalid, err)
+	}
+	return block, limits.check(bytes, block)
+}
+
+// rejection is the verdict on a block whose structure is unsound.
+func rejection(sequence int64, digest string, err error) *kinegatev1.VerdictBlock {
+	f := Explain(err)
+	r := &kinegatev1.Rejection{Reason: string(f.Reason), Message: clip(f.Message, maxMessage)}
+	if len(f.Violations) > 0 {
+		r.Field = clip(f.Violations[0].Field, maxTextBytes)
+	}
+	return &kinegatev1.VerdictBlock{Sequence: sequence, SelectionDigest: digest, Rejected: r}
+}
+
+// blockBytes is the encoded size of a block.
+func blockBytes(m *kinegatev1.EventBlock) int64 { return int64(proto.Size(m)) }
+
+// turns limits how many blocks are judged at once over all callers. A turn is
+// short, so waiting callers take theirs in the order of the runtime's queue.
+type turns chan struct{}
+
+func newTurns(n int) turns { return make(turns, n) }
+
+// take waits for a turn; the caller gives it back at once after its use.
+func (t turns) take(ctx context.Context) (release func(), err error) {
+	select {
+	case t <- struct{}{}:
+		return func() { <-t }, nil
+	case <-ctx.Done():
+		return nil, ctx.Err()
+	}
+}

@@ -1,0 +1,100 @@
+package api
+
+import (
+	"slices"
+	"strings"
+	"sync"
+
+	"example.org/kinegate/kinematics/particle"
+	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+)
+
+// Library holds the selections that callers may name. It is safe for concurrent
+// use, and a stream keeps what it got from it even after a change.
+type Library struct {
+	table *particle.Table
+
+	mu     sync.Mutex
+	byName map[string][]*compiledSelection // newest first
+}
+
+// keptDigests is how many versions of a name stay available, so that a stream
+// broken during a change can be resumed.
+const keptDigests = 4
+
+// NewLibrary returns an empty library over a particle table.
+func NewLibrary(table *particle.Table) *Library {
+	return &Library{table: table, byName: map[string][]*compiledSelection{}}
+}
+
+// Add reads the text of a selection file and makes it the newest of its name. With
+// faults the library stays as it was, and the error is a *Failure that lists them.
+func (l *Library) Add(text string) error {
+	message, positions, faults := readSelection(text)
+	if len(faults) > 0 {
+		return selectionTextError(message.GetName(), faults)
+	}
+	c, err := compile(message, l.table)
+	if err != nil {
+		return selectionTextError(message.GetName(), selectionFaults(err, positions))
+	}
+	l.mu.Lock()
+	defer l.mu.Unlock()
+	name := message.GetName()
+	old := slices.DeleteFunc(slices.Clone(l.byName[name]), func(o *compiledSelection) bool { return o.digest == c.digest })
+	l.byName[name] = append([]*compiledSelection{c}, old[:min(len(old), keptDigests-1)]...)
+	return nil
+}
+
+// find returns a selection by name and digest, the newest for an empty digest.
+func (l *Library) find(ref *kinegatev1.SelectionReference) (*compiledSelection, error) {
+	l.mu.Lock()
+	defer l.mu.Unlock()
+	versions := l.byName[ref.GetName()]
+	if len(versions) == 0 {
+		return nil, Refuse(SelectionNotFound, "no selection is named so", "name", ref.GetName(), "known", strings.Join(l.namesLocked(), ", "))
+	}
+	if ref.GetSelectionDigest() == "" {
+		return versions[0], nil
+	}
+	for _, c := range versions {
+		if c.digest == ref.GetSelectionDigest() {
+			return c, nil
+		}
+	}
+	return nil, Refuse(DigestGone, "this version of the selection is no longer available",
+		"name", ref.GetName(), "selection_digest", ref.GetSelectionDigest(), "newest_digest", versions[0].digest)
+}
+
+// list returns what there is, by name.
+func (l *Library) list() []*kinegatev1.NamedSelection {
+	l.mu.Lock()
+	defer l.mu.Unlock()
+	var list []*kinegatev1.NamedSelection
+	for _, name := range l.namesLocked() {
+		named := &kinegatev1.NamedSelection{Name: name, Description: l.byName[name][0].message.GetDescription()}
+		for _, c := range l.byName[name] {
+			named.Digests = append(named.Digests, c.digest)
+		}
+		list = append(list, named)
+	}
+	return list
+}
+
+func (l *Library) namesLocked() []string {
+	names := make([]string, 0, len(l.byName))
+	for name := range l.byName {
+		names = append(names, name)
+	}
+	slices.Sort(names)
+	return names
+}
+
+// selectionTextError is the refusal of a selection file.
+func selectionTextError(name string, faults []*kinegatev1.SelectionFault) error {
+	f := &Failure{Reason: SelectionInvalid, Message: "selection " + name + ": " + describeFault(faults[0])}
+	for _, v := range faults {
+		f.Violations = append(f.Violations, Violation{Field: v.GetField(), Problem: describeFault(v)})
+	}
+	return f
+}

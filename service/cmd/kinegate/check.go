@@ -1,0 +1,85 @@
+package main
+
+import (
+	"fmt"
+	"os"
+	"strings"
+
+	"github.com/spf13/cobra"
+
+	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+	"example.org/kinegate/service/cmd/kinegate/internal/text"
+)
+
+// checkCommand reports every fault of a selection file.
+func checkCommand(p program) *cobra.Command {
+	e := newEnvironment(p)
+	c := &cobra.Command{
+		Use:   "check FILE...",
+		Short: "Report every fault of selection files, with line and column",
+		Long: "check reads selection files and reports every fault at once, with line and column. It\n" +
+			"exits with 0 if all can be used and with 3 if one cannot.",
+		Args: usage(cobra.MinimumNArgs(1)),
+		RunE: func(c *cobra.Command, args []string) error {
+			client, closeClient, err := e.connect(c.Context())
+			if err != nil {
+				return err
+			}
+			defer closeClient()
+			faulty := false
+			for _, name := range args {
+				yaml, err := os.ReadFile(name)
+				if err != nil {
+					return badInput("%w", err)
+				}
+				ctx, cancel := e.calling(c.Context())
+				reply, err := client.Selections.CheckSelection(ctx, &kinegatev1.CheckSelectionRequest{
+					Form: &kinegatev1.CheckSelectionRequest_Yaml{Yaml: string(yaml)},
+				})
+				cancel()
+				if err != nil {
+					return err
+				}
+				faulty = faulty || len(reply.GetFaults()) > 0
+				if done, err := e.reply(reply); err != nil {
+					return err
+				} else if !done {
+					if err := e.describeCheck(name, reply); err != nil {
+						return err
+					}
+				}
+			}
+			if faulty {
+				return errNo
+			}
+			return nil
+		},
+	}
+	e.flags(c)
+	return c
+}
+
+func (e *environment) describeCheck(name string, r *kinegatev1.CheckSelectionResponse) error {
+	for _, f := range r.GetFaults() {
+		e.print("%s", faultText(name, f))
+	}
+	if n := len(r.GetFaults()); n > 0 {
+		e.print("%s: %d fault%s", name, n, map[bool]string{true: "", false: "s"}[n == 1])
+		return nil
+	}
+	e.print("%s: selection %s can be used, digest %s", name, r.GetSelection().GetName(), r.GetSelectionDigest())
+	t := text.NewTable("hypothesis", "reaction", ">products", "records")
+	for _, h := range r.GetHypotheses() {
+		t.Row(h.GetName(), h.GetReaction(), fmt.Sprint(len(h.GetProducts())), strings.Join(h.GetObservables(), ", "))
+	}
+	if err := t.Write(e.out); err != nil {
+		return err
+	}
+	e.print("  largest reply to a block with all entries: %.1f MiB", float64(r.GetLargestReplyByteCount())/(1<<20))
+	return nil
+}
+
+// faultText is a fault in the form that editors jump to.
+func faultText(name string, f *kinegatev1.SelectionFault) string {
+	return fmt.Sprintf("%s:%d:%d: %s: %s", name, f.GetLine(), f.GetColumn(), f.GetField(), f.GetMessage())
+}

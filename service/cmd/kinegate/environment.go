@@ -1,0 +1,139 @@
+package main
+
+import (
+	"context"
+	"fmt"
+	"net"
+	"os"
+	"time"
+
+	"github.com/spf13/cobra"
+	"golang.org/x/term"
+	"google.golang.org/protobuf/proto"
+
+	kinegate "example.org/kinegate/clients/go"
+	"example.org/kinegate/service/cmd/kinegate/internal/jsonform"
+	"example.org/kinegate/service/server"
+)
+
+// badInput is a fault of the arguments or of a file that they name.
+func badInput(format string, args ...any) error { return usageError{fmt.Errorf(format, args...)} }
+
+// environment is what the commands that ask a server share.
+type environment struct {
+	program
+
+	// terminal says that a person watches the standard error.
+	terminal bool
+	json     bool
+	address  string
+	options  kinegate.Options
+	timeout  time.Duration
+}
+
+func newEnvironment(p program) *environment {
+	e := &environment{program: p}
+	if f, ok := p.err.(*os.File); ok {
+		e.terminal = term.IsTerminal(int(f.Fd()))
+	}
+	return e
+}
+
+// flags adds the flags that say which server to ask.
+func (e *environment) flags(c *cobra.Command) {
+	f := c.Flags()
+	f.StringVar(&e.address, "address", "", `server to ask, as "host:port" or "unix:/path"; without it the command starts one of its own`)
+	f.BoolVar(&e.options.TLS, "tls", false, "use TLS towards --address")
+	f.StringVar(&e.options.CAFile, "ca", "", "PEM file with the authorities to trust; those of the system if empty")
+	f.StringVar(&e.options.CertFile, "certificate", "", "PEM file with the own certificate, for servers that ask for one")
+	f.StringVar(&e.options.KeyFile, "key", "", "PEM file with the key of --certificate")
+	f.StringVar(&e.options.ServerName, "server-name", "", "name that the server's certificate must carry, if not that of --address")
+	f.BoolVar(&e.json, "json", false, "print the reply in its JSON form, columns as arrays")
+	f.DurationVar(&e.timeout, "timeout", 10*time.Second, "time to wait for an answer")
+}
+
+// connect returns a client of the server at --address, or of one that it starts in
+// this process on a loopback port. The caller closes it.
+func (e *environment) connect(ctx context.Context) (*kinegate.Client, func(), error) {
+	if e.address != "" {
+		client, err := kinegate.Dial(e.address, e.options)
+		if err != nil {
+			return nil, nil, usageError{err}
+		}
+		return client, func() { _ = client.Close() }, nil
+	}
+	own, err := startOwn(ctx)
+	if err != nil {
+		return nil, nil, err
+	}
+	client, err := kinegate.Dial(own.general, kinegate.Options{})
+	if err != nil {
+		own.stop()
+		return nil, nil, err
+	}
+	return client, func() { _ = client.Close(); own.stop() }, nil
+}
+
+// ownServer is a server in this process.
+type ownServer struct {
+	gate, general string // addresses
+	stop          func()
+}
+
+// startOwn starts a server with default settings on loopback ports that the system
+// chooses.
+func startOwn(ctx context.Context) (*ownServer, error) {
+	options := server.Defaults()
+	options.GateAddress, options.GeneralAddress = "127.0.0.1:0", "127.0.0.1:0"
+	options.HealthAddress, options.MetricsAddress, options.DebugAddress = "", "", ""
+	options.DrainNotice = 0
+	s, err := server.New(options, server.Deps{Version: version()})
+	if err != nil {
+		return nil, err
+	}
+	if err := s.Listen(ctx); err != nil {
+		return nil, err
+	}
+	served := make(chan error, 1)
+	go func() { served <- s.Serve(ctx) }()
+	address := func(l server.Listener) string { return addressText(s.Addr(l)) }
+	return &ownServer{
+		gate: address(server.Gate), general: address(server.General),
+		stop: func() {
+			stopping, cancel := context.WithTimeout(context.WithoutCancel(ctx), time.Second)
+			defer cancel()
+			_ = s.Shutdown(stopping)
+			<-served
+		},
+	}, nil
+}
+
+func addressText(a net.Addr) string {
+	if a == nil {
+		return ""
+	}
+	return a.String()
+}
+
+// reply prints a reply as JSON if that was asked for, and reports whether it did.
+func (e *environment) reply(m proto.Message) (bool, error) {
+	if !e.json {
+		return false, nil
+	}
+	text, err := jsonform.Marshal(m)
+	if err != nil {
+		return true, err
+	}
+	_, err = fmt.Fprintf(e.out, "%s\n", text)
+	return true, err
+}
+
+// calling bounds a unary call.
+func (e *environment) calling(ctx context.Context) (context.Context, context.CancelFunc) {
+	return context.WithTimeout(ctx, e.timeout)
+}
+
+// print writes a line; a broken pipe shows at the end, when the buffer is flushed.
+func (e *environment) print(format string, args ...any) {
+	_, _ = fmt.Fprintf(e.out, format+"\n", args...)
+}

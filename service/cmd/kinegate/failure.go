@@ -1,0 +1,74 @@
+package main
+
+import (
+	"errors"
+	"fmt"
+	"slices"
+	"strings"
+
+	"google.golang.org/genproto/googleapis/rpc/errdetails"
+	"google.golang.org/grpc/codes"
+	"google.golang.org/grpc/status"
+)
+
+// errNo ends a command whose answer is no and has been printed.
+var errNo = errors.New("no")
+
+// explain turns what a command returned into the text to print and the code to end
+// with.
+func explain(err error) (text string, code int) {
+	if errors.Is(err, errNo) {
+		return "", exitNo
+	}
+	if _, ok := errors.AsType[usageError](err); ok {
+		return err.Error(), exitUsage
+	}
+	s, ok := status.FromError(err)
+	if !ok {
+		return err.Error(), exitFailed
+	}
+	switch s.Code() { //nolint:exhaustive // all other codes are failures of the work
+	case codes.InvalidArgument, codes.NotFound, codes.FailedPrecondition, codes.OutOfRange:
+		return describeStatus(s), exitUsage
+	case codes.Unavailable:
+		return "no server answers: " + s.Message(), exitFailed
+	}
+	return describeStatus(s), exitFailed
+}
+
+// describeStatus prints a status of the server: its sentence, the other fields at
+// fault, and a mark under the place in the text where there is one.
+func describeStatus(s *status.Status) string {
+	lines := []string{s.Message()}
+	for _, d := range s.Details() {
+		if detail, ok := d.(*errdetails.BadRequest); ok {
+			for _, v := range detail.GetFieldViolations() {
+				if v.GetDescription() != "" && !strings.Contains(s.Message(), v.GetDescription()) {
+					lines = append(lines, "  "+v.GetField()+": "+v.GetDescription())
+				}
+			}
+		}
+	}
+	return strings.Join(slices.Compact(lines), "\n")
+}
+
+// underline shows the place of a fault in a text that the user typed.
+func underline(err error, text string) error {
+	s, ok := status.FromError(err)
+	if !ok {
+		return err
+	}
+	for _, d := range s.Details() {
+		info, ok := d.(*errdetails.ErrorInfo)
+		if !ok {
+			continue
+		}
+		var column int
+		if _, scanErr := fmt.Sscan(info.GetMetadata()["column"], &column); scanErr != nil || column < 1 || column > len(text)+1 {
+			continue
+		}
+		shown := describeStatus(s) + "\n  " + text + "\n  " + strings.Repeat(" ", column-1) + "^"
+		return usageError{errors.New(shown)}
+	}
+	return err
+}
