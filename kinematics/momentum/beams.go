@@ -34,7 +34,7 @@ func CollideBeams(m1, p1, m2, p2, angle float64) CollisionState {
 	e1 := math.Sqrt(float64(m1*m1) + float64(p1*p1))
 	e2 := math.Sqrt(float64(m2*m2) + float64(p2*p2))
 	sine := num.Sin(angle / 2)
-	gap := 2 * p1 * p2 * float64(sine*sine)
+	gap := float64(2 * p1 * p2 * float64(sine*sine))
 	if momenta := float64(p1*e2) + float64(p2*e1); momenta > 0 && e1*e2 > 0 {
 		a, b := m1*e2, m2*p1
 		collinear := (float64(a*a)+float64(b*b))/(float64(e1*e2)+float64(p1*p2)) + float64(m1*m2)
@@ -53,13 +53,13 @@ func CollideBeams(m1, p1, m2, p2, angle float64) CollisionState {
 //
 // within 6 x 2^-53 relative.
 func CollideTarget(m1, t1, m2 float64) CollisionState {
-	return stateFromGap(m1, m2, t1*m2)
+	return stateFromGap(m1, m2, float64(t1*m2))
 }
 
 // stateFromGap puts s = (m1+m2)^2 + 2 gap and its parts together.
 func stateFromGap(m1, m2, gap float64) CollisionState {
 	m := m1 + m2
-	over := 2 * gap
+	over := float64(2 * gap)
 	s := float64(m*m) + over
 	root := math.Sqrt(s)
 	state := CollisionState{S: s, SqrtS: root}

@@ -65,7 +65,7 @@ func (b *Boost) FromRest(p Four) Four { return b.apply(p, 1) }
 func (b *Boost) ToRest(p Four) Four { return b.apply(p, -1) }
 
 func (b *Boost) apply(p Four, sign float64) Four {
-	along := sign * b.gb.Dot(p.P)
+	along := float64(sign * b.gb.Dot(p.P))
 	k := sign * (p.E + float64(along*b.slip))
 	return Four{
 		Three{

@@ -22,7 +22,9 @@ func (a Three) Sub(b Three) Three { return Three{a.X - b.X, a.Y - b.Y, a.Z - b.Z
 func (a Three) Neg() Three { return Three{-a.X, -a.Y, -a.Z} }
 
 // Scale returns k * a.
-func (a Three) Scale(k float64) Three { return Three{k * a.X, k * a.Y, k * a.Z} }
+func (a Three) Scale(k float64) Three {
+	return Three{float64(k * a.X), float64(k * a.Y), float64(k * a.Z)}
+}
 
 // Dot returns the scalar product of a and b, with an error of at most
 // 3 x 2^-53 x (|ax bx| + |ay by| + |az bz|).

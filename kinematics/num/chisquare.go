@@ -29,7 +29,7 @@ func ChiSquareTail(chi2 float64, ndf int) float64 {
 	if ndf%2 == 0 {
 		term, sum := 1.0, 1.0
 		for j := 1; j < ndf/2; j++ {
-			term *= x / float64(j)
+			term = float64(term * (x / float64(j)))
 			sum += term
 		}
 		return Exp(-x) * sum
@@ -39,7 +39,7 @@ func ChiSquareTail(chi2 float64, ndf int) float64 {
 	term, sum := root*(2*inverseRootPi), 0.0
 	for j := 1; j <= (ndf-1)/2; j++ {
 		sum += term
-		term *= x / (float64(j) + 0.5)
+		term = float64(term * (x / (float64(j) + 0.5)))
 	}
 	return Erfc(root) + float64(Exp(-x)*sum)
 }

@@ -38,7 +38,7 @@ func reduceLn2(x DD) (int, DD) {
 	}
 	// k times the first word is within 2^-53 of x.Hi, so that the difference of the
 	// two exact values keeps all digits.
-	r := x.Sub(Prod2(k, Ln2().Hi)).Sub(Prod2(k, Ln2().Lo)).SubFloat(k * 0x1.7b57a079a1934p-111)
+	r := x.Sub(Prod2(k, Ln2().Hi)).Sub(Prod2(k, Ln2().Lo)).SubFloat(float64(k * 0x1.7b57a079a1934p-111))
 	return int(k), r
 }
 

@@ -95,7 +95,8 @@ func erfMiddle(s float64) float64 {
 func erfcTail(x float64) float64 {
 	s := 1 / (x * x)
 	z := math.Float64frombits(math.Float64bits(x) &^ (1<<32 - 1))
-	exponent := math.FMA(z-x, z+x, erfcRatio(x, s))
+	less, more := z-x, z+x
+	exponent := math.FMA(less, more, erfcRatio(x, s))
 	return Exp(-float64(z*z)-0.5625) * Exp(exponent) / x
 }
 

@@ -53,7 +53,7 @@ func Exp2(x float64) float64 {
 	}
 	k := math.Floor(x + 0.5)
 	t := x - k
-	return expReduced(t*ln2Hi, -t*ln2Lo, int(k))
+	return expReduced(float64(t*ln2Hi), float64(-t*ln2Lo), int(k))
 }
 
 // expReduced returns 2^k e^(hi-lo) for |hi-lo| <= 0.36.
@@ -73,7 +73,7 @@ func expRemainder(t float64) float64 {
 		p4 = -1.65339022054652515390e-06
 		p5 = 4.13813679705723846039e-08
 	)
-	return t * math.FMA(t, math.FMA(t, math.FMA(t, math.FMA(t, p5, p4), p3), p2), p1)
+	return float64(t * math.FMA(t, math.FMA(t, math.FMA(t, math.FMA(t, p5, p4), p3), p2), p1))
 }
 
 // Expm1 returns e^x - 1, within 1 ulp (0.78 measured), also for small x.
@@ -95,15 +95,15 @@ func Expm1(x float64) float64 {
 	if math.Abs(x) > math.Ln2/2 {
 		k = math.Floor(float64(invLn2*x) + 0.5)
 		hi := x - float64(k*ln2Hi)
-		lo := k * ln2Lo
+		lo := float64(k * ln2Lo)
 		r = hi - lo
 		c = (hi - r) - lo
 	}
-	half := 0.5 * r
-	square := r * half
+	half := float64(0.5 * r)
+	square := float64(r * half)
 	r1 := expm1Remainder(square)
 	t := 3 - float64(r1*half)
-	e := square * ((r1 - t) / (6 - float64(r*t)))
+	e := float64(square * ((r1 - t) / (6 - float64(r*t))))
 	if k == 0 {
 		return r - (float64(r*e) - square)
 	}

@@ -89,7 +89,7 @@ func gammaPower(a, x float64) float64 {
 func gammaSeries(a, x float64) float64 {
 	term, sum := 1.0, 1.0
 	for n := 1.0; term > sum*0x1p-56; n++ {
-		term *= x / (a + n)
+		term = float64(term * (x / (a + n)))
 		sum += term
 	}
 	return gammaPower(a, x) * sum / a
@@ -108,7 +108,7 @@ func gammaFraction(a, x float64) float64 {
 		b += 2
 		d = 1 / (float64(an*d) + b)
 		c = b + an/c
-		step := c * d
+		step := float64(c * d)
 		h *= step
 		if math.Abs(step-1) <= 0x1p-52 || n > 1e6 {
 			return gammaPower(a, x) * h

@@ -75,7 +75,7 @@ func Asinh(x float64) float64 {
 	case size > 0x1p28:
 		return math.Copysign(Log(size)+math.Ln2, x)
 	}
-	square := size * size
+	square := float64(size * size)
 	return math.Copysign(Log1p(size+square/(1+math.Sqrt(1+square))), x)
 }
 

@@ -90,7 +90,8 @@ func atan2Positive(y, x float64) float64 {
 	}
 	angle, low := Atan(q), 0.0
 	if q > 0x1p-900 && y > 0x1p-900 {
-		low = math.FMA(-q, math.Abs(x), y) / math.Abs(x) / (1 + float64(q*q))
+		low = math.FMA(-q, math.Abs(x), y) / math.Abs(x)
+		low /= 1 + float64(q*q)
 	}
 	if x < 0 {
 		return (math.Pi - angle) + (piLo - low)
@@ -121,7 +122,8 @@ func Asin(x float64) float64 {
 	if s > 0 {
 		c = math.FMA(-s, s, z) / (2 * s)
 	}
-	p := math.FMA(2*s, asinRemainder(z), float64(2*c)-piLo/2)
+	tail := float64(2*c) - piLo/2
+	p := math.FMA(2*s, asinRemainder(z), tail)
 	return math.Copysign(math.Pi/4-(p-(math.Pi/4-float64(2*s))), x)
 }
 
@@ -147,7 +149,8 @@ func Acos(x float64) float64 {
 	z := (1 - x) / 2
 	s := math.Sqrt(z)
 	c := math.FMA(-s, s, z) / (2 * s)
-	return 2 * (s + math.FMA(s, asinRemainder(z), c))
+	c = math.FMA(s, asinRemainder(z), c)
+	return 2 * (s + c)
 }
 
 // asinRemainder returns asin(x)/x - 1 as a function of t = x^2 <= 1/4.

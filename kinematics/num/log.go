@@ -67,8 +67,8 @@ func logReduced(f, k, c float64) float64 {
 	)
 	s := f / (2 + f)
 	z := s * s
-	r := z * math.FMA(z, math.FMA(z, math.FMA(z, math.FMA(z, math.FMA(z, math.FMA(z, l7, l6), l5), l4), l3), l2), l1)
-	half := 0.5 * f * f
+	r := float64(z * math.FMA(z, math.FMA(z, math.FMA(z, math.FMA(z, math.FMA(z, math.FMA(z, l7, l6), l5), l4), l3), l2), l1))
+	half := float64(0.5 * f * f)
 	if k == 0 {
 		return f - (half - (float64(s*(half+r)) + c))
 	}

@@ -33,8 +33,11 @@ func Hypot(x, y float64) float64 {
 		x, y = x/scale, y/scale
 	}
 	h := math.Sqrt(float64(x*x) + float64(y*y))
-	hh, xx := h*h, x*x
-	low := math.FMA(-y, y, hh-xx) + math.FMA(h, h, -hh) - math.FMA(x, x, -xx)
+	hh, xx := float64(h*h), float64(x*x)
+	low := hh - xx
+	low = math.FMA(-y, y, low)
+	low += math.FMA(h, h, -hh)
+	low -= math.FMA(x, x, -xx)
 	return (h - low/(2*h)) * scale
 }
 
@@ -57,11 +60,12 @@ func Cbrt(x float64) float64 {
 	// 1/8 <= m < 1; the quadratic is within 2 %.
 	r := math.FMA(m, math.FMA(m, -0.352, 0.963), 0.387)
 	for range 2 {
-		cube := r * r * r
+		cube := float64(r * r * r)
 		r *= (cube + float64(2*m)) / (float64(2*cube) + m)
 	}
 	square, low := TwoProd(r, r)
-	residual := math.FMA(-square, r, m) - float64(low*r)
+	residual := math.FMA(-square, r, m)
+	residual -= float64(low * r)
 	r += residual / (3 * square)
 	return math.Copysign(math.Ldexp(r, exponent/3), x)
 }

@@ -85,7 +85,7 @@ func cosKernel(x, y float64) float64 {
 	)
 	z := x * x
 	r := z * math.FMA(z, math.FMA(z, math.FMA(z, math.FMA(z, math.FMA(z, c6, c5), c4), c3), c2), c1)
-	half := 0.5 * z
+	half := float64(0.5 * z)
 	w := 1 - half
 	return w + (((1 - w) - half) + (float64(z*r) - float64(x*y)))
 }
@@ -113,7 +113,7 @@ func tanKernel(x, y float64, inverse bool) float64 {
 	z := x * x
 	w := z * z
 	odd := math.FMA(w, math.FMA(w, math.FMA(w, math.FMA(w, math.FMA(w, t11, t9), t7), t5), t3), t1)
-	even := z * math.FMA(w, math.FMA(w, math.FMA(w, math.FMA(w, math.FMA(w, t12, t10), t8), t6), t4), t2)
+	even := float64(z * math.FMA(w, math.FMA(w, math.FMA(w, math.FMA(w, math.FMA(w, t12, t10), t8), t6), t4), t2))
 	s := z * x
 	r := y + float64(z*(float64(s*(odd+even))+y))
 	r += float64(t0 * s)
@@ -132,5 +132,7 @@ func tanKernel(x, y float64, inverse bool) float64 {
 	// -1/(x+r) with the rounding errors of w = x+r and of 1/w carried along.
 	low := r - (w - x)
 	a := -1 / w
-	return math.FMA(a, math.FMA(a, w, 1)+float64(a*low), a)
+	slope := math.FMA(a, w, 1)
+	slope += float64(a * low)
+	return math.FMA(a, slope, a)
 }

@@ -31,7 +31,7 @@ func (s *Stream) Poisson(mean float64) int {
 	// The last bit of the sum may stay below u: stop where terms no longer count.
 	for u > sum && (float64(k) < mean || term > sum*0x1p-60) {
 		k++
-		term *= mean / float64(k)
+		term = float64(term * (mean / float64(k)))
 		sum += term
 	}
 	return k

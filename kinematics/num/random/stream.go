@@ -56,7 +56,7 @@ func (s *Stream) refill() {
 // the 2^52 values (k + 1/2) 2^-52: exact, symmetric about 1/2, and neither end
 // is ever reached. (With one bit more the largest k + 1/2 would round to 1.)
 func (s *Stream) Uniform() float64 {
-	return (float64(s.Word()>>12) + 0.5) * (1.0 / (1 << 52))
+	return float64((float64(s.Word()>>12) + 0.5) * (1.0 / (1 << 52)))
 }
 
 // Below returns a whole number k, 0 <= k < n, from one word: the high half of
