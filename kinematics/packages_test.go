@@ -5,7 +5,10 @@ import (
 	"encoding/json"
 	"errors"
 	"io"
+	"io/fs"
+	"os"
 	"os/exec"
+	"path/filepath"
 	"regexp"
 	"strings"
 	"testing"
@@ -29,10 +32,37 @@ type listed struct {
 // complaint matches what the go command itself says among the lines of a compiler's listing.
 var complaint = regexp.MustCompile(`(?m)^(#|go: |package |\S+\.go:\d+).*$`)
 
+// watch looks at every folder and source file of the module from within the test. The go command
+// that a test starts is a process of its own, and without this look a result would be taken from
+// the test cache though the sources have changed.
+func watch(t *testing.T) {
+	t.Helper()
+
+	err := filepath.WalkDir("..", func(path string, entry fs.DirEntry, err error) error {
+		if err != nil {
+			return err
+		}
+
+		if entry.IsDir() && strings.HasPrefix(entry.Name(), ".") && entry.Name() != ".." {
+			return filepath.SkipDir
+		}
+
+		if entry.IsDir() || filepath.Ext(path) == ".go" {
+			_, err = os.Stat(path)
+		}
+
+		return err
+	})
+	if err != nil {
+		t.Fatalf("looking at the sources: %v", err)
+	}
+}
+
 // goCommand runs the go command at the root of the module and returns what it printed on
 // standard output. Environment settings such as GOARCH=arm64 come first.
 func goCommand(t *testing.T, environment []string, arguments ...string) (stdout, stderr string) {
 	t.Helper()
+	watch(t)
 
 	command := exec.CommandContext(t.Context(), "go", arguments...) //nolint:gosec // The arguments are the tests' own.
 	command.Dir = ".."
