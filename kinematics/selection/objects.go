@@ -25,9 +25,12 @@ type objects struct {
 	momentum       [maxObjects]momentum.Three
 	// length is that of the momentum, the energy of a photon.
 	length [maxObjects]float64
-	// angular holds 2(|p||q| - p.q) of every pair, row by row above the diagonal.
-	angular      [maxObjects * (maxObjects - 1) / 2]float64
-	angularReady bool
+	// coordinates are those of the block, and first is the event's first row.
+	coordinates *event.Coordinates
+	first       int
+	// apart holds |p||q| - p.q of every pair, row by row above the diagonal.
+	apart      [maxObjects * (maxObjects - 1) / 2]float64
+	apartReady bool
 }
 
 // set is a set of objects.
@@ -55,8 +58,9 @@ func above(i int) set { return ^set(0) << i << 1 }
 func (o *objects) load(block *event.Block, i int) {
 	first, end := block.Objects(i)
 	o.count = end - first
-	o.full, o.directed, o.photons, o.angularReady = 0, 0, 0, false
+	o.full, o.directed, o.photons, o.apartReady = 0, 0, 0, false
 	x := &block.Coordinates
+	o.coordinates, o.first = x, first
 	cartesian := x.Kind == event.EnergyMomentum || x.Kind == event.MomentumMass
 	for k := range o.count {
 		row := first + k
@@ -90,17 +94,6 @@ func (o *objects) load(block *event.Block, i int) {
 	}
 }
 
-// angle returns 2(|p||q| - p.q) = |p||q| |u - v|^2 of objects i < j with directions
-// u, v. It is within 5 x 2^-53 relative of the formula for the stored directions,
-// whose rounding moves it by at most 12 x 2^-53 over the angle between them.
-func (o *objects) angle(i, j int) float64 {
-	if !o.angularReady {
-		momentum.PhotonPairMassesSquared(o.angular[:], o.length[:o.count], o.direction[:o.count])
-		o.angularReady = true
-	}
-	return o.angular[i*(2*o.count-i-1)/2+j-i-1]
-}
-
 // motion is what the objects of an event are under one kind of mass.
 type motion struct {
 	ready bool
@@ -121,7 +114,7 @@ func (m *motion) load(k kind, o *objects, block *event.Block, i int) {
 		case k.mass == 0:
 			m.energy[j], m.square[j] = o.length[j], 0
 		default:
-			m.square[j] = k.mass * k.mass
+			m.square[j] = float64(k.mass * k.mass)
 			m.energy[j] = math.Sqrt(float64(o.length[j]*o.length[j]) + m.square[j])
 		}
 	}
@@ -136,7 +129,7 @@ func (m *motion) fromEvent(o *objects, block *event.Block, row, j int) {
 		m.square[j] = momentum.MassSquared(momentum.Four{P: o.momentum[j], E: m.energy[j]})
 	case event.MomentumMass, event.TransverseMomentum:
 		mass := x.Columns[3][row]
-		m.square[j] = mass * mass
+		m.square[j] = float64(mass * mass)
 		m.energy[j] = math.Sqrt(float64(o.length[j]*o.length[j]) + m.square[j])
 	case event.MomentumAngles, event.MomentumSlopes:
 	}
@@ -145,51 +138,4 @@ func (m *motion) fromEvent(o *objects, block *event.Block, row, j int) {
 // givesMass reports whether the events of a coordinate set state a mass or an energy.
 func givesMass(k event.Kind) bool {
 	return k == event.EnergyMomentum || k == event.MomentumMass || k == event.TransverseMomentum
-}
-
-// table holds the invariant products of every pair of objects under two kinds of
-// mass, row first for the first kind.
-type table struct {
-	ready   bool
-	product [maxObjects * maxObjects]float64
-}
-
-// at is the place of the product of objects i and j.
-func at(i, j uint8) int { return int(i)*maxObjects + int(j) }
-
-// load computes the products
-//
-//	Ea Eb - pa.pb = (sa Eb^2 + sb pa^2)/(Ea Eb + |pa||pb|) + (|pa||pb| - pa.pb)
-//
-// with the signed mass squared s = E^2 - p^2 of each, a sum of positive terms where
-// both are positive: within 12 x 2^-53 relative of what the stored directions say.
-// It follows from (Ea Eb)^2 - (pa pb)^2 = sa Eb^2 + sb pa^2.
-func (t *table) load(o *objects, a, b *motion, same bool) {
-	t.ready = true
-	for i := range o.count {
-		if !o.full.has(i) {
-			continue
-		}
-		for j := range o.count {
-			if j == i || !o.full.has(j) {
-				continue
-			}
-			low, high := min(i, j), max(i, j)
-			if same && low != i {
-				t.product[i*maxObjects+j] = t.product[j*maxObjects+i]
-				continue
-			}
-			product := o.angle(low, high) / 2
-			if a.square[i] != 0 || b.square[j] != 0 {
-				lengths := float64(o.length[i] * o.length[j])
-				energies := float64(a.energy[i] * b.energy[j])
-				if sum := energies + lengths; sum > 0 {
-					first := float64(a.square[i] * float64(b.energy[j]*b.energy[j]))
-					second := float64(b.square[j] * float64(o.length[i]*o.length[i]))
-					product += (first + second) / sum
-				}
-			}
-			t.product[i*maxObjects+j] = product
-		}
-	}
 }

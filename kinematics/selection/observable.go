@@ -183,7 +183,7 @@ func (w *Worker) transferPrime(v *window) float64 {
 	}
 	a := w.incoming.boost.ToRest(w.incoming.side(v.initial)).P
 	b := w.incoming.boost.ToRest(w.add(v.slots)).P
-	lengths, dot := a.Norm()*b.Norm(), a.Dot(b)
+	lengths, dot := float64(a.Norm()*b.Norm()), a.Dot(b)
 	if dot > 0 {
 		return 2 * a.Cross(b).Square() / (lengths + dot)
 	}
