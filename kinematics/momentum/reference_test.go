@@ -1,7 +1,6 @@
 package momentum
 
 import (
-	"math"
 	"testing"
 
 	"example.org/kinegate/kinematics/fault"
@@ -120,5 +119,3 @@ func TestPrecisionRapidity(t *testing.T) {
 		return reference.Output{"rapidity": Rapidity(p, in.Float("m")), "pseudorapidity": Pseudorapidity(p)}, ""
 	})
 }
-
-var _ = math.Pi
