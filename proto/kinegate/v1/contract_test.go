@@ -7,7 +7,6 @@ import (
 	"strings"
 	"testing"
 
-	"google.golang.org/protobuf/proto"
 	"google.golang.org/protobuf/reflect/protodesc"
 	"google.golang.org/protobuf/reflect/protoreflect"
 	"google.golang.org/protobuf/reflect/protoregistry"
@@ -200,7 +199,7 @@ func TestContractNames(t *testing.T) {
 func seededFile(t *testing.T, fields ...string) protoreflect.FileDescriptor {
 	t.Helper()
 
-	message := &descriptorpb.DescriptorProto{Name: proto.String("Seeded")}
+	message := &descriptorpb.DescriptorProto{Name: new("Seeded")}
 
 	for i, text := range fields {
 		part := strings.Fields(text)
@@ -216,17 +215,17 @@ func seededFile(t *testing.T, fields ...string) protoreflect.FileDescriptor {
 		}
 
 		message.Field = append(message.Field, &descriptorpb.FieldDescriptorProto{
-			Name:   proto.String(part[2]),
-			Number: proto.Int32(int32(i + 1)), //nolint:gosec // A dozen at most.
+			Name:   new(part[2]),
+			Number: new(int32(i + 1)),
 			Type:   descriptorpb.FieldDescriptorProto_Type(kind).Enum(),
 			Label:  label.Enum(),
 		})
 	}
 
 	file, err := protodesc.NewFile(&descriptorpb.FileDescriptorProto{
-		Name:        proto.String("seeded.proto"),
-		Package:     proto.String("seeded.v1"),
-		Syntax:      proto.String("proto3"),
+		Name:        new("seeded.proto"),
+		Package:     new("seeded.v1"),
+		Syntax:      new("proto3"),
 		MessageType: []*descriptorpb.DescriptorProto{message},
 	}, nil)
 	if err != nil {
