@@ -326,9 +326,9 @@ func (b *brute) rank() float64 {
 	return sum
 }
 
-// passing lists every labelled assignment that passes for one beam candidate.
-func (b *brute) passing() []found {
-	var list []found
+// assignments lists every labelled assignment that is possible for one beam candidate,
+// and of those the ones that pass.
+func (b *brute) assignments() (possible, passing []found) {
 	first, end := b.block.Objects(b.index)
 	for _, conjugate := range []bool{false, b.h.AlsoConjugate} {
 		b.conjugate = conjugate
@@ -345,8 +345,12 @@ func (b *brute) passing() []found {
 		var place func(k int)
 		place = func(k int) {
 			if k == len(seen) {
-				if b.allowed() && (b.h.Condition == nil || b.holds(b.h.Condition)) {
-					list = append(list, found{b.rank(), slices.Clone(b.of)})
+				if b.allowed() {
+					x := found{b.rank(), slices.Clone(b.of)}
+					possible = append(possible, x)
+					if b.h.Condition == nil || b.holds(b.h.Condition) {
+						passing = append(passing, x)
+					}
 				}
 				return
 			}
@@ -360,7 +364,7 @@ func (b *brute) passing() []found {
 		}
 		place(0)
 	}
-	return list
+	return possible, passing
 }
 
 // candidates lists the beam rows and weights to test.
@@ -393,7 +397,7 @@ func (b *brute) candidates() map[int]float64 {
 func compareWithBrute(t *testing.T, s selection.Selection, block *event.Block, compared []int) {
 	t.Helper()
 	table := standard(t)
-	out := judge(t, compileAll(t, s), block, selection.AcceptedEntries)
+	out := judge(t, compileAll(t, s), block, selection.AllEntries)
 	for i := range block.Events() {
 		got := rows(out)[out.Entries.Offsets[i]:out.Entries.Offsets[i+1]]
 		if out.Status[i] != event.Good {
@@ -408,16 +412,20 @@ func compareWithBrute(t *testing.T, s selection.Selection, block *event.Block, c
 			any := false
 			for row, weight := range b.candidates() {
 				b.beamRow = row
-				list := b.passing()
-				any = any || len(list) > 0
+				possible, passing := b.assignments()
+				any = any || len(passing) > 0
 				k := slices.IndexFunc(got, func(e event.Entry) bool { return int(e.Hypothesis) == h && int(e.BeamRow) == row })
-				if (k >= 0) != (len(list) > 0) {
-					t.Errorf("event %d, %s, beam row %d: entry %v, %d assignments pass", i, b.h.Reaction, row, k >= 0, len(list))
+				if (k >= 0) != (len(possible) > 0) || (k >= 0 && (got[k].Status == event.Accepted) != (len(passing) > 0)) {
+					t.Errorf("event %d, %s, beam row %d: entry %v, %d assignments pass of %d", i, b.h.Reaction, row, k >= 0,
+						len(passing), len(possible))
 					continue
 				}
-				if k >= 0 {
+				switch {
+				case len(passing) > 0:
 					compared[h]++
-					compareEntry(t, b, got[k], weight, list)
+					compareEntry(t, b, got[k], weight, passing)
+				case len(possible) > 0:
+					compareEntry(t, b, got[k], weight, possible)
 				}
 			}
 			if out.Accepted[h].Get(i) != any {
@@ -427,7 +435,7 @@ func compareWithBrute(t *testing.T, s selection.Selection, block *event.Block, c
 	}
 }
 
-// compareEntry compares an entry with the best of the assignments that pass. Ranks are
+// compareEntry compares an entry with the best of some assignments. Ranks are
 // sums of masses near 1 GeV, equal to 1e-9 where exchanges of identical products make
 // them equal; of those the lowest tuple of objects is the answer.
 func compareEntry(t *testing.T, b *brute, e event.Entry, weight float64, list []found) {

@@ -2,6 +2,7 @@ package selection_test
 
 import (
 	"errors"
+	"sync"
 	"testing"
 
 	"example.org/kinegate/kinematics/event"
@@ -11,10 +12,13 @@ import (
 	"example.org/kinegate/kinematics/selection"
 )
 
+// table reads the built-in particle table once.
+var table = sync.OnceValues(func() (*particle.Table, error) { return particle.New() })
+
 // standard is the built-in particle table.
 func standard(t testing.TB) *particle.Table {
 	t.Helper()
-	table, err := particle.New()
+	table, err := table()
 	if err != nil {
 		t.Fatal(err)
 	}

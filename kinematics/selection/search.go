@@ -250,6 +250,7 @@ func (w *Worker) lookForPossible(done *bool) bool {
 		*done = true
 		must, left := w.search.must, w.left
 		w.search = search{must: must, possible: true}
+		w.used = 0
 		w.left = w.program.budget
 		w.try()
 		w.left = left
