@@ -17,7 +17,7 @@ func Excess(m float64, masses ...float64) (float64, num.Side) {
 	for _, mi := range masses {
 		exact = exact.Add(-mi)
 	}
-	return exact.Float(), num.Side(exact.Sign())
+	return exact.Float(), exact.Side()
 }
 
 // ExcessS returns the same as Excess for a total mass squared s > 0 in GeV^2:

@@ -15,42 +15,42 @@ func TestMotionAgainstExact(t *testing.T) {
 	constructors := []struct {
 		name string
 		// draw returns the motion with the exact mass, energy and momentum.
-		draw func(s sampler) (got Motion, err error, e, p *big.Float)
+		draw func(s sampler) (got Motion, e, p *big.Float, err error)
 	}{
-		{"momentum", func(s sampler) (Motion, error, *big.Float, *big.Float) {
+		{"momentum", func(s sampler) (Motion, *big.Float, *big.Float, error) {
 			m, p := s.mass(), s.magnitude(-12, 12)
 			got, err := MotionFromMomentum(m, p)
-			return got, err, bigEnergy(Three{Z: p}, m), bigOf(p)
+			return got, bigEnergy(Three{Z: p}, m), bigOf(p), err
 		}},
-		{"kinetic", func(s sampler) (Motion, error, *big.Float, *big.Float) {
+		{"kinetic", func(s sampler) (Motion, *big.Float, *big.Float, error) {
 			m, kinetic := s.mass(), s.magnitude(-12, 12)
 			got, err := MotionFromKinetic(m, kinetic)
 			e := add(bigOf(m), bigOf(kinetic))
-			return got, err, e, root(mul(bigOf(kinetic), add(e, bigOf(m))))
+			return got, e, root(mul(bigOf(kinetic), add(e, bigOf(m)))), err
 		}},
-		{"total", func(s sampler) (Motion, error, *big.Float, *big.Float) {
+		{"total", func(s sampler) (Motion, *big.Float, *big.Float, error) {
 			m := s.magnitude(-6, 3)
 			e := math.Nextafter(m, math.Inf(1)) * (1 + s.magnitude(-15, 9))
 			got, err := MotionFromTotal(m, e)
-			return got, err, bigOf(e), root(mul(sub(bigOf(e), bigOf(m)), add(bigOf(e), bigOf(m))))
+			return got, bigOf(e), root(mul(sub(bigOf(e), bigOf(m)), add(bigOf(e), bigOf(m)))), err
 		}},
-		{"beta", func(s sampler) (Motion, error, *big.Float, *big.Float) {
+		{"beta", func(s sampler) (Motion, *big.Float, *big.Float, error) {
 			m, beta := s.magnitude(-6, 3), s.magnitude(-12, 0)
 			got, err := MotionFromBeta(m, beta)
 			e := div(bigOf(m), root(sub(one, mul(bigOf(beta), bigOf(beta)))))
-			return got, err, e, mul(e, bigOf(beta))
+			return got, e, mul(e, bigOf(beta)), err
 		}},
-		{"gamma", func(s sampler) (Motion, error, *big.Float, *big.Float) {
+		{"gamma", func(s sampler) (Motion, *big.Float, *big.Float, error) {
 			m, gamma := s.magnitude(-6, 3), 1+s.magnitude(-15, 9)
 			got, err := MotionFromGamma(m, gamma)
-			return got, err, mul(bigOf(m), bigOf(gamma)), mul(bigOf(m), root(sub(mul(bigOf(gamma), bigOf(gamma)), one)))
+			return got, mul(bigOf(m), bigOf(gamma)), mul(bigOf(m), root(sub(mul(bigOf(gamma), bigOf(gamma)), one))), err
 		}},
 	}
 	for _, c := range constructors {
 		t.Run(c.name, func(t *testing.T) {
 			s, worst := newSampler(), 0.0
 			for range 5000 {
-				got, err, e, p := c.draw(s)
+				got, e, p, err := c.draw(s)
 				if err != nil {
 					t.Fatal(err)
 				}

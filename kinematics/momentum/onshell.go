@@ -67,8 +67,9 @@ func MassSquaredOnShell(particles ...OnShell) float64 {
 	var squares, pairs float64
 	for i := range particles {
 		squares += float64(particles[i].M * particles[i].M)
-		for j := range i {
-			pairs += particles[i].Product(&particles[j])
+		earlier := particles[:i]
+		for j := range earlier {
+			pairs += particles[i].Product(&earlier[j])
 		}
 	}
 	return squares + float64(2*pairs)

@@ -26,10 +26,12 @@ func ULPDistance(a, b float64) uint64 {
 		return math.MaxUint64
 	}
 	rankA, rankB := rank(a), rank(b)
-	if rankA > rankB {
-		return uint64(rankA) - uint64(rankB)
+	if rankA < rankB {
+		rankA, rankB = rankB, rankA
 	}
-	return uint64(rankB) - uint64(rankA)
+	// The difference of two ranks can exceed an int64, but not a uint64, in which it wraps
+	// to the right value.
+	return uint64(rankA) - uint64(rankB) //nolint:gosec // see above
 }
 
 // rank numbers the doubles in ascending order, 0 and -0 both 0.

@@ -81,7 +81,7 @@ func (x DD) Atanh() DD {
 		return x.Neg().Atanh().Neg()
 	}
 	rest := x.Neg().AddFloat(1)
-	if !(rest.Sign() > 0) {
+	if rest.Sign() <= 0 {
 		return FromFloat(Atanh(x.Hi))
 	}
 	return x.Scale(1).Div(rest).Log1p().Scale(-1)

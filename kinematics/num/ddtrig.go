@@ -83,30 +83,30 @@ func cosReduced(r DD) DD {
 	return sum.Mul(z).AddFloat(1)
 }
 
-// Atan2 returns the angle of the point (x, y) from the x axis within -pi..pi,
+// Atan2 returns the angle of the point (abscissa, x) from the first axis within -pi..pi,
 // within 2^-94 relative.
 //
-// One Newton step from the double t: sin(angle - t) = (y cos t - x sin t)/hypot(x, y)
+// One Newton step from the double t: sin(angle - t) = (x cos t - abscissa sin t)/length
 // is at most 2^-51 or so, and equals its arc to the third order.
 //
-// Domain: x, y 0 or within 1e-100..1e100 in magnitude. Special cases: those of
+// Domain: both 0 or within 1e-100..1e100 in magnitude. Special cases: those of
 // Atan2 for a zero, infinite or NaN argument, with pi and pi/2 to two words.
-func (y DD) Atan2(x DD) DD {
-	t := Atan2(y.Hi, x.Hi)
+func (x DD) Atan2(abscissa DD) DD {
+	t := Atan2(x.Hi, abscissa.Hi)
 	switch {
-	case math.IsNaN(t) || math.IsInf(x.Hi, 0) || math.IsInf(y.Hi, 0):
+	case math.IsNaN(t) || math.IsInf(abscissa.Hi, 0) || math.IsInf(x.Hi, 0):
 		return FromFloat(t)
-	case y.Hi == 0:
+	case x.Hi == 0:
 		if t == 0 {
 			return FromFloat(t)
 		}
 		return withSign(Pi(), t)
-	case x.Hi == 0:
+	case abscissa.Hi == 0:
 		return withSign(HalfPi(), t)
 	}
 	s, c := FromFloat(t).Sincos()
-	length := x.Square().Add(y.Square()).Sqrt()
-	return y.Mul(c).Sub(x.Mul(s)).Div(length).AddFloat(t)
+	length := abscissa.Square().Add(x.Square()).Sqrt()
+	return x.Mul(c).Sub(abscissa.Mul(s)).Div(length).AddFloat(t)
 }
 
 // Atan returns the arc tangent of |x| <= 1e100 within 2^-94 relative.

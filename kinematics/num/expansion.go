@@ -1,5 +1,7 @@
 package num
 
+import "slices"
+
 // Expansion is an exact number: the unevaluated sum of its components, which are
 // non-zero, do not overlap and grow in magnitude. The empty Expansion is 0.
 //
@@ -90,14 +92,22 @@ func (e Expansion) Sign() int {
 	return FromFloat(e[len(e)-1]).Sign()
 }
 
+// Side returns on which side of zero e lies, exactly.
+func (e Expansion) Side() Side {
+	if len(e) == 0 {
+		return At
+	}
+	return SideOf(e[len(e)-1], 0)
+}
+
 // DD returns e as a double-double with relative error below 2^-100.
 func (e Expansion) DD() DD {
 	// Summing from the largest component down loses nothing but what lies under
 	// the second word; three components reach 2^-106 unless they are short, and
 	// the loop takes all.
 	var sum DD
-	for i := len(e) - 1; i >= 0; i-- {
-		sum = sum.AddFloat(e[i])
+	for _, component := range slices.Backward(e) {
+		sum = sum.AddFloat(component)
 	}
 	return sum
 }

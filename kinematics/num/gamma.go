@@ -2,17 +2,17 @@ package num
 
 import "math"
 
-// LogGamma returns the logarithm of the gamma function of a double-double a > 0, within
-// 2^-90 of max(1, |result|). Special cases: a <= 0 and NaN give NaN.
+// LogGamma returns the logarithm of the gamma function of a double-double x > 0, within
+// 2^-90 of max(1, |result|). Special cases: x <= 0 and NaN give NaN.
 //
 // Stirling's series at z >= 30, where the first term left out is below 2^-120, and the
-// product a(a+1)...(z-1) below. Source: M. Abramowitz and I. A. Stegun, Handbook of
+// product x(x+1)...(z-1) below. Source: M. Abramowitz and I. A. Stegun, Handbook of
 // Mathematical Functions (1964), 6.1.40.
-func (a DD) LogGamma() DD {
-	if !(a.Hi > 0) {
+func (x DD) LogGamma() DD {
+	if !(x.Hi > 0) {
 		return FromFloat(math.NaN())
 	}
-	z, product := a, FromFloat(1)
+	z, product := x, FromFloat(1)
 	for z.Hi < 30 {
 		product = product.Mul(z)
 		z = z.AddFloat(1)

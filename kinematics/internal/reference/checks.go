@@ -10,6 +10,7 @@ import (
 // precision case.
 type Check struct {
 	Input
+
 	// Quantity says in words what is asked for.
 	Quantity string
 	// Unit is the unit of the answer, "1" for none.
