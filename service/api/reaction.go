@@ -175,7 +175,7 @@ func angleRange(r breakup.Range) *kinegatev1.AngleRange {
 
 func thresholdMessage(t *reaction.Threshold) *kinegatev1.Threshold {
 	m := &kinegatev1.Threshold{
-		SqrtSGev: t.SqrtS, SqrtSUncertaintyGev: t.SqrtSError, OpenAtRest: t.OpenAtRest,
+		SqrtSGev: t.Mass, SqrtSUncertaintyGev: t.MassError, OpenAtRest: t.OpenAtRest,
 	}
 	if t.Reached {
 		m.TotalEnergyGev, m.KineticEnergyGev, m.MomentumGev = &t.Beam.Total, &t.Beam.Kinetic, &t.Beam.Momentum

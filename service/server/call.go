@@ -23,6 +23,7 @@ type call struct {
 	grpc.ServerStream
 
 	ctx    context.Context //nolint:containedctx // a ServerStream carries its context
+	single bool            // one message and then the end is all that may come
 	method string
 	label  string
 	begun  time.Time
@@ -47,7 +48,23 @@ func (c *call) RecvMsg(m any) error {
 		return fmt.Errorf("cannot receive a %T", m)
 	}
 	in := incoming{message: message, limits: c.limits}
-	if err := c.ServerStream.RecvMsg(&in); err != nil {
+	err := c.receive(&in)
+	switch {
+	case !c.single:
+		return err
+	case errors.Is(err, io.EOF):
+		return api.Refuse(api.MessageUndecodable, "the call came without a message")
+	case err != nil:
+		return err
+	case !errors.Is(c.receive(&incoming{limits: c.limits}), io.EOF):
+		return api.Refuse(api.MessageUndecodable, "the call came with more than one message")
+	}
+	return nil
+}
+
+// receive receives into a frame and counts it.
+func (c *call) receive(in *incoming) error {
+	if err := c.ServerStream.RecvMsg(in); err != nil {
 		if errors.Is(err, io.EOF) {
 			return io.EOF
 		}

@@ -13,7 +13,7 @@ import (
 // instead of failing: gRPC answers a codec that fails by itself, without an
 // ErrorInfo.
 type incoming struct {
-	message proto.Message
+	message proto.Message // nil for a message that nobody wants
 	limits  api.Limits
 
 	size  int
@@ -50,6 +50,9 @@ func (codec) Unmarshal(data mem.BufferSlice, v any) error {
 	in.size = data.Len()
 	if in.size > in.limits.MessageBytes {
 		in.fault = tooLarge(int64(in.size), int64(in.limits.MessageBytes))
+		return nil
+	}
+	if in.message == nil {
 		return nil
 	}
 	buffer := data.MaterializeToBuffer(mem.DefaultBufferPool())

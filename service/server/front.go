@@ -5,7 +5,6 @@ import (
 	"crypto/rand"
 	"encoding/hex"
 	"errors"
-	"io"
 	"strconv"
 	"strings"
 	"sync/atomic"
@@ -62,33 +61,33 @@ type front struct {
 	open   atomic.Int64
 }
 
-// RegisterService adds a service. Every method becomes a stream, so that answer is
-// around all of them.
+// RegisterService adds a service. Every method becomes a stream of any number of
+// messages, so that answer is around all of them and call counts the messages.
 func (f *front) RegisterService(desc *grpc.ServiceDesc, impl any) {
 	wrapped := *desc
 	wrapped.Methods, wrapped.Streams = nil, nil
-	for _, m := range desc.Methods {
-		method := "/" + desc.ServiceName + "/" + m.MethodName
+	add := func(name string, single bool, body func(srv any, c *call) error) {
+		method := "/" + desc.ServiceName + "/" + name
 		wrapped.Streams = append(wrapped.Streams, grpc.StreamDesc{
-			StreamName: m.MethodName,
+			StreamName: name, ClientStreams: true, ServerStreams: true,
 			Handler: func(srv any, stream grpc.ServerStream) error {
-				return f.answer(method, method, stream, func(c *call) error { return f.unary(c, srv, m) })
+				c := f.begin(method, method, stream)
+				c.single = single
+				return f.answer(c, func() error { return body(srv, c) })
 			},
 		})
 	}
+	for _, m := range desc.Methods {
+		add(m.MethodName, true, func(srv any, c *call) error { return f.unary(c, srv, m.Handler) })
+	}
 	for _, s := range desc.Streams {
-		method, handler := "/"+desc.ServiceName+"/"+s.StreamName, s.Handler
-		s.Handler = func(srv any, stream grpc.ServerStream) error {
-			return f.answer(method, method, stream, func(c *call) error { return handler(srv, c) })
-		}
-		wrapped.Streams = append(wrapped.Streams, s)
+		add(s.StreamName, !s.ClientStreams, func(srv any, c *call) error { return s.Handler(srv, c) })
 	}
 	f.server.RegisterService(&wrapped, impl)
 }
 
 // answer is around every call. Its lines are the layers, outermost first.
-func (f *front) answer(method, label string, stream grpc.ServerStream, body func(*call) error) error {
-	c := f.begin(method, label, stream)
+func (f *front) answer(c *call, body func() error) error {
 	err := api.Contain(func() error {
 		if f.authorise != nil {
 			if err := f.authorise(c.identity, c.method); err != nil {
@@ -99,44 +98,35 @@ func (f *front) answer(method, label string, stream grpc.ServerStream, body func
 			return err
 		}
 		defer f.release(c)
-		return body(c)
+		return body()
 	})
 	return f.end(c, err)
 }
 
-// unary is the body of a method with one message each way.
-func (f *front) unary(c *call, srv any, m grpc.MethodDesc) error {
+// unary is the body of a method with one message each way. A deadline is all that keeps
+// a handler from working for a caller who has long given up.
+func (f *front) unary(c *call, srv any, handler grpc.MethodHandler) error {
 	deadline, ok := c.ctx.Deadline()
-	switch {
-	case !ok:
-		ctx, cancel := context.WithTimeout(c.ctx, f.defaultDeadline)
-		defer cancel()
-		c.ctx = ctx
-	case deadline.Sub(c.begun) > f.longestDeadline:
-		ctx, cancel := context.WithTimeout(c.ctx, f.longestDeadline)
+	limit := f.longestDeadline
+	if !ok {
+		limit = f.defaultDeadline
+	}
+	if !ok || deadline.Sub(c.begun) > limit {
+		ctx, cancel := context.WithTimeout(c.ctx, limit)
 		defer cancel()
 		c.ctx = ctx
 	}
-	reply, err := m.Handler(srv, c.ctx, c.receiveOnly, nil)
+	reply, err := handler(srv, c.ctx, c.RecvMsg, nil)
 	if err != nil {
 		return err
 	}
 	return c.SendMsg(reply)
 }
 
-// receiveOnly receives the one message of a unary call.
-func (c *call) receiveOnly(m any) error {
-	err := c.RecvMsg(m)
-	if errors.Is(err, io.EOF) {
-		return api.Refuse(api.MessageUndecodable, "the call came without a message")
-	}
-	return err
-}
-
 // unknown answers calls of methods that are not registered.
 func (f *front) unknown(_ any, stream grpc.ServerStream) error {
 	method, _ := grpc.MethodFromServerStream(stream)
-	return f.answer(method, telemetry.OtherMethod, stream, func(*call) error { return unknownMethod(method) })
+	return f.answer(f.begin(method, telemetry.OtherMethod, stream), func() error { return unknownMethod(method) })
 }
 
 // unknownMethod is the failure of a method that is not registered.
