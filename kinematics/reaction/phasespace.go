@@ -141,9 +141,9 @@ func logisticNodes() []node {
 func convolve(nodes []node, q, sum, m float64, inner func(float64) float64) float64 {
 	var volume float64
 	for _, n := range nodes {
-		x := q * n.u
+		x := float64(q * n.u)
 		mass := sum + x
-		volume += float64(n.weight * mass * pairVolume(mass, m)(q*n.v) * inner(x))
+		volume += float64(n.weight * mass * pairVolume(mass, m)(float64(q*n.v)) * inner(x))
 	}
 	return 2 * q * volume
 }
@@ -158,7 +158,7 @@ func convolve(nodes []node, q, sum, m float64, inner func(float64) float64) floa
 // (y + sqrt(1+y^2))^-i, y = pi/h; the count takes them to exp(-50) of their scale, which
 // is large for the poles there.
 func interpolate(k int, volume func(float64) float64) func(float64) float64 {
-	law := float64(3*k-5) / 2
+	law := float64(float64(3*k-5) / 2)
 	span := 46 / (law + 1)
 	half := span / 2
 	y := math.Pi / half

@@ -51,3 +51,8 @@ func (d Direction) Angle() float64 {
 
 // Forward reports whether the direction is nearer to 0 than to pi.
 func (d Direction) Forward() bool { return d.Fore.Cmp(d.Aft) >= 0 }
+
+// AtCosineDD returns the direction at a cosine within -1..1.
+func AtCosineDD(cosine num.DD) Direction {
+	return Direction{Fore: cosine.AddFloat(1).Scale(-1), Aft: cosine.Neg().AddFloat(1).Scale(-1)}
+}

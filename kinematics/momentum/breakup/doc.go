@@ -60,3 +60,7 @@ func Sum(terms ...float64) num.DD {
 func Momentum(over, w, a, b num.DD) num.DD {
 	return over.Mul(over.Add(a.Mul(b).Scale(2))).Sqrt().Div(w).Scale(-1)
 }
+
+// Over returns w^2 - (a + b)^2 for the excess w - a - b, exactly signed: the product
+// excess (w + a + b).
+func Over(excess, w, a, b num.DD) num.DD { return excess.Mul(w.Add(a).Add(b)) }
