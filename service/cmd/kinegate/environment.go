@@ -53,25 +53,41 @@ func (e *environment) flags(c *cobra.Command) {
 }
 
 // connect returns a client of the server at --address, or of one that it starts in
-// this process on a loopback port. The caller closes it.
-func (e *environment) connect(ctx context.Context) (*kinegate.Client, func(), error) {
-	if e.address != "" {
-		client, err := kinegate.Dial(e.address, e.options)
+// this process on a loopback port.
+func (e *environment) connect(ctx context.Context) (client *kinegate.Client, closeClient func(), err error) {
+	client, _, closeClient, err = e.connectGate(ctx, "")
+	return client, closeClient, err
+}
+
+// connectGate is connect for commands that open a judge stream: it returns a client
+// for calls and one for the stream, which has a listener of its own.
+func (e *environment) connectGate(ctx context.Context, gateAddress string) (calls, gate *kinegate.Client, closeBoth func(), err error) {
+	if e.address == "" && gateAddress != "" {
+		return nil, nil, nil, badInput("--gate-address needs --address")
+	}
+	general, stop := e.address, func() {}
+	if general == "" {
+		own, err := startOwn(ctx)
 		if err != nil {
-			return nil, nil, usageError{err}
+			return nil, nil, nil, err
 		}
-		return client, func() { _ = client.Close() }, nil
+		general, gateAddress, stop = own.general, own.gate, own.stop
 	}
-	own, err := startOwn(ctx)
+	if gateAddress == "" {
+		gateAddress = general
+	}
+	if calls, err = kinegate.Dial(general, e.options); err == nil {
+		gate, err = kinegate.Dial(gateAddress, e.options)
+	}
 	if err != nil {
-		return nil, nil, err
+		stop()
+		return nil, nil, nil, usageError{err}
 	}
-	client, err := kinegate.Dial(own.general, kinegate.Options{})
-	if err != nil {
-		own.stop()
-		return nil, nil, err
-	}
-	return client, func() { _ = client.Close(); own.stop() }, nil
+	return calls, gate, func() {
+		_ = calls.Close()
+		_ = gate.Close()
+		stop()
+	}, nil
 }
 
 // ownServer is a server in this process.

@@ -1,0 +1,253 @@
+package main
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"io"
+	"os"
+	"path/filepath"
+	"time"
+
+	"github.com/spf13/cobra"
+
+	kinegate "example.org/kinegate/clients/go"
+	"example.org/kinegate/kinematics/particle"
+	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+	"example.org/kinegate/service/cmd/kinegate/internal/hall"
+	"example.org/kinegate/service/cmd/kinegate/internal/quantity"
+	"example.org/kinegate/service/cmd/kinegate/internal/text"
+)
+
+// demoCommand runs the main job once on an invented experiment.
+func demoCommand(p program) *cobra.Command {
+	d := &demo{environment: newEnvironment(p)}
+	c := &cobra.Command{
+		Use:   "demo",
+		Short: "Run the main job once, on the invented Marrow Hall",
+		Long: "demo starts a server on a loopback port, asks it which channels are open in the tagged\n" +
+			"range of Marrow Hall, an invented experiment, streams simulated events to it and prints\n" +
+			"what a shift physicist wants to know. The events come from this program's own generator\n" +
+			"and are the same for the same seed.",
+		Example: `  kinegate demo
+  kinegate demo --keep hall`,
+		Args: usage(cobra.NoArgs),
+		RunE: func(c *cobra.Command, _ []string) error { return d.run(c.Context()) },
+	}
+	d.flags(c)
+	f := c.Flags()
+	f.IntVar(&d.events, "events", 40000, "number of events, 100 to 1000000")
+	f.Uint64Var(&d.seed, "seed", 1, "seed of the events")
+	f.StringVar(&d.keep, "keep", "", "folder to write the selection and the events to, for kinegate judge")
+	return c
+}
+
+// demo is one run of the command.
+type demo struct {
+	*environment
+
+	events int
+	seed   uint64
+	keep   string
+}
+
+// blockEvents is the size of the demo's blocks.
+const demoBlockEvents = 500
+
+func (d *demo) run(ctx context.Context) error {
+	if d.events < 100 || d.events > 1000000 {
+		return badInput("--events %d: 100 to 1000000 are allowed", d.events)
+	}
+	client, gate, closeClients, err := d.connectGate(ctx, "")
+	if err != nil {
+		return err
+	}
+	defer closeClients()
+	d.print("Marrow Hall: an invented experiment with invented rates. Tagged photons of %s to %s on hydrogen.\n",
+		gev(hall.LowGeV), gev(hall.HighGeV))
+	if err := d.openChannels(ctx, client); err != nil {
+		return err
+	}
+	selection, err := d.selection(ctx, client)
+	if err != nil {
+		return err
+	}
+	table, err := particle.New()
+	if err != nil {
+		return err
+	}
+	start := time.Now()
+	events, err := hall.Events(table, d.seed, d.events)
+	if err != nil {
+		return err
+	}
+	d.print("\n%d events simulated in %.1f s, seed %d: %.0f s of beam at %d Hz after the pre-trigger.",
+		len(events), time.Since(start).Seconds(), d.seed, float64(len(events))/hall.RateHz, hall.RateHz)
+	shift := newShift(selection, events)
+	if err := d.judge(ctx, gate, selection, events, shift); err != nil {
+		return err
+	}
+	if err := shift.write(d.environment); err != nil {
+		return err
+	}
+	return d.next(events)
+}
+
+// openChannels says where each reaction of the mixture opens.
+func (d *demo) openChannels(ctx context.Context, client *kinegate.Client) error {
+	t := text.NewTable("reaction", ">threshold", "at "+gev(hall.LowGeV), "at "+gev(hall.HighGeV), ">excess there")
+	for _, c := range hall.Mix() {
+		if c.Reaction == "" {
+			continue
+		}
+		row := []string{c.Reaction, ""}
+		for _, energy := range []float64{hall.LowGeV, hall.HighGeV} {
+			reply, err := d.describe(ctx, client, c.Reaction, energy)
+			if err != nil {
+				return err
+			}
+			row[1] = quantity.Format(reply.GetThreshold().GetTotalEnergyGev(), quantity.Energy, 5)
+			row = append(row, stateText(reply.GetState())[3:])
+			if energy == hall.HighGeV {
+				row = append(row, quantity.Format(reply.GetExcessEnergyGev(), quantity.Energy, 4))
+			}
+		}
+		t.Row(row...)
+	}
+	return t.Write(d.out)
+}
+
+func (d *demo) describe(ctx context.Context, client *kinegate.Client, reaction string, energy float64) (*kinegatev1.DescribeReactionResponse, error) {
+	ctx, cancel := d.calling(ctx)
+	defer cancel()
+	return client.Reactions.DescribeReaction(ctx, &kinegatev1.DescribeReactionRequest{
+		Form: &kinegatev1.DescribeReactionRequest_Reaction{Reaction: reaction},
+		InitialState: &kinegatev1.InitialState{Kind: &kinegatev1.InitialState_BeamOnTarget{BeamOnTarget: &kinegatev1.BeamOnTarget{
+			Beam: &kinegatev1.BeamMotion{Value: &kinegatev1.BeamMotion_TotalEnergyGev{TotalEnergyGev: energy}},
+		}}},
+	})
+}
+
+// selection reads the hall's selection on the server.
+func (d *demo) selection(ctx context.Context, client *kinegate.Client) (*kinegatev1.CheckSelectionResponse, error) {
+	ctx, cancel := d.calling(ctx)
+	defer cancel()
+	reply, err := client.Selections.CheckSelection(ctx, &kinegatev1.CheckSelectionRequest{
+		Form: &kinegatev1.CheckSelectionRequest_Yaml{Yaml: hall.Selection},
+	})
+	if err != nil {
+		return nil, err
+	}
+	if len(reply.GetFaults()) > 0 {
+		return nil, errors.New(faultText("selection.yaml", reply.GetFaults()[0]))
+	}
+	return reply, nil
+}
+
+// judge streams the events.
+func (d *demo) judge(ctx context.Context, gate *kinegate.Client, selection *kinegatev1.CheckSelectionResponse, events []hall.Event, shift *shift) error {
+	progress := text.NewProgress(d.err, d.terminal, "judging", int64(len(events)))
+	defer progress.Done()
+	open := &kinegatev1.JudgeOpen{
+		Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: selection.GetSelection()}},
+		Entries:   kinegatev1.EntryDetail_ENTRY_DETAIL_ACCEPTED,
+		Limits: &kinegatev1.Limits{
+			BlockEventCount: demoBlockEvents, BlockCandidateCount: candidatesPerEvent * demoBlockEvents,
+		},
+	}
+	left := events
+	next := func() (*batch[hall.Event], error) {
+		if len(left) == 0 {
+			return nil, io.EOF
+		}
+		n := min(demoBlockEvents, len(left))
+		b := &batch[hall.Event]{events: left[:n], block: hallBlock(left[:n])}
+		left = left[n:]
+		return b, nil
+	}
+	start := time.Now()
+	err := pump(ctx, gate, open, next, func(b *batch[hall.Event], v *kinegate.Verdicts) error {
+		shift.add(b, v)
+		progress.Set(int64(shift.tally.events))
+		return nil
+	})
+	shift.elapsed = time.Since(start)
+	return err
+}
+
+func hallBlock(events []hall.Event) *kinegatev1.EventBlock {
+	builder := kinegate.NewBuilder(kinegate.MomentumAngles)
+	builder.RunNumber = 1
+	for _, e := range events {
+		builder.Add(e.ID, e.Objects, e.Beam)
+	}
+	return builder.Take()
+}
+
+// next says what to try, and writes the files for it if that was asked for.
+func (d *demo) next(events []hall.Event) error {
+	folder := d.keep
+	if folder != "" {
+		if err := os.MkdirAll(folder, 0o755); err != nil { //nolint:gosec // files to look at
+			return err
+		}
+		if err := os.WriteFile(filepath.Join(folder, "selection.yaml"), []byte(hall.Selection), 0o644); err != nil { //nolint:gosec // as above
+			return err
+		}
+		if err := writeEvents(filepath.Join(folder, "events.csv"), events); err != nil {
+			return err
+		}
+		d.print("\nWritten: %s and %s", filepath.Join(folder, "selection.yaml"), filepath.Join(folder, "events.csv"))
+	}
+	d.print("\nWhat to try next:")
+	if folder == "" {
+		d.print("  kinegate demo --keep hall            keep the selection and the events as files")
+		folder = "hall"
+	}
+	d.print("  kinegate judge --selection %s %s --histogram \"omega/omega mass=700 MeV:860 MeV:32\"",
+		filepath.Join(folder, "selection.yaml"), filepath.Join(folder, "events.csv"))
+	d.print("  kinegate check %s", filepath.Join(folder, "selection.yaml"))
+	d.print("  kinegate reaction \"gamma p -> p eta'\" --beam \"1.5 GeV\"")
+	d.print("  kinegate serve                       run the server for others; kinegate serve --help lists its settings")
+	d.print("\n%s", caution)
+	return nil
+}
+
+// eventsFileColumns is the width of the events file.
+const eventsFileObjects, eventsFileBeams = 10, 4
+
+func writeEvents(name string, events []hall.Event) error {
+	file, err := os.Create(name)
+	if err != nil {
+		return err
+	}
+	_, _ = fmt.Fprintln(file, "# Simulated events of Marrow Hall, an invented experiment. GeV, rad, ns.")
+	heading := "event,channel"
+	for i := 1; i <= eventsFileObjects; i++ {
+		heading += fmt.Sprintf(",class%[1]d,p%[1]d,theta%[1]d,phi%[1]d,direction%[1]d,species%[1]d", i)
+	}
+	for i := 1; i <= eventsFileBeams; i++ {
+		heading += fmt.Sprintf(",beam_energy%[1]d,beam_sigma%[1]d,beam_time%[1]d", i)
+	}
+	_, _ = fmt.Fprintln(file, heading)
+	mix := hall.Mix()
+	for _, e := range events {
+		line := fmt.Sprintf("%d,%s", e.ID, mix[e.Channel].Name)
+		for i := range eventsFileObjects {
+			if i >= len(e.Objects) {
+				line += ",,,,,,"
+				continue
+			}
+			line += objectCells(e.Objects[i])
+		}
+		for i := range eventsFileBeams {
+			if i >= len(e.Beam) {
+				line += ",,,"
+				continue
+			}
+			line += fmt.Sprintf(",%v,%v,%v", e.Beam[i].Energy, e.Beam[i].Sigma, e.Beam[i].Time)
+		}
+		_, _ = fmt.Fprintln(file, line)
+	}
+	return file.Close()
+}

@@ -1,0 +1,151 @@
+package main
+
+import (
+	"context"
+	"fmt"
+	"os"
+	"time"
+
+	"github.com/spf13/cobra"
+
+	kinegate "example.org/kinegate/clients/go"
+	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+	"example.org/kinegate/service/cmd/kinegate/internal/eventfile"
+	"example.org/kinegate/service/cmd/kinegate/internal/text"
+)
+
+// judgeCommand judges measured events from files.
+func judgeCommand(p program) *cobra.Command {
+	j := &judgeRun{environment: newEnvironment(p)}
+	c := &cobra.Command{
+		Use:   "judge --selection FILE EVENTS.csv...",
+		Short: "Judge measured events from CSV files against a selection",
+		Long: "judge streams events from CSV files to a server, which judges them against a selection,\n" +
+			"and prints a summary. Columns: run, event; px1, py1, pz1, m1 or p1, theta1, phi1 or pt1,\n" +
+			"eta1, phi1, m1 for each object (GeV, rad); class1 (photon, positive, negative, neutral),\n" +
+			"q1 (charge) or pid1 (particle number); beam_energy1, beam_sigma1, beam_time1 (GeV, GeV, ns)\n" +
+			"for each tagged candidate. Other columns are kept for --compare.",
+		Example: `  kinegate judge --selection dimuon.yaml dimuon_2011A.csv
+  kinegate judge --selection dimuon.yaml dimuon_2011A.csv --out verdicts.csv --histogram "dimuon/M=2 GeV:110 GeV:27"
+  kinegate judge --selection dimuon.yaml dimuon_2011A.csv --compare M=dimuon/M`,
+		Args: usage(cobra.MinimumNArgs(1)),
+		RunE: func(c *cobra.Command, args []string) error { return j.run(c.Context(), args) },
+	}
+	j.flags(c)
+	f := c.Flags()
+	f.StringVar(&j.selectionFile, "selection", "", "selection file (YAML); required")
+	f.StringVar(&j.outFile, "out", "", "write one line per event with its verdicts to this CSV file")
+	f.StringArrayVar(&j.compare, "compare", nil, "compare a column with a recorded observable, as COLUMN=NAME/LABEL; NAME is a hypothesis or a group")
+	f.StringArrayVar(&j.histograms, "histogram", nil, `draw a recorded observable, as NAME/LABEL=LOW:HIGH:BINS`)
+	f.IntVar(&j.blockEvents, "block-events", 1000, "events per block, 1 to 4096")
+	f.StringVar(&j.gateAddress, "gate-address", "", "server for the judge stream, if not that of --address")
+	return c
+}
+
+// judgeRun is one run of the command.
+type judgeRun struct {
+	*environment
+
+	selectionFile, outFile, gateAddress string
+	compare, histograms                 []string
+	blockEvents                         int
+
+	checked *kinegatev1.CheckSelectionResponse
+}
+
+// candidatesPerEvent is a promise to the server, on average over a block. It leaves
+// room in one reply for all entries of ordinary selections.
+const candidatesPerEvent = 4
+
+func (j *judgeRun) run(ctx context.Context, files []string) error {
+	if j.selectionFile == "" {
+		return badInput("--selection is required")
+	}
+	if j.blockEvents < 1 || j.blockEvents > 4096 {
+		return badInput("--block-events %d: 1 to 4096 are allowed", j.blockEvents)
+	}
+	yaml, err := os.ReadFile(j.selectionFile)
+	if err != nil {
+		return badInput("%w", err)
+	}
+	client, gate, closeClients, err := j.connectGate(ctx, j.gateAddress)
+	if err != nil {
+		return err
+	}
+	defer closeClients()
+	if err := j.check(ctx, client, string(yaml)); err != nil {
+		return err
+	}
+	sinks, err := j.sinks()
+	if err != nil {
+		return err
+	}
+	sums := newTally(j.checked.GetHypotheses())
+	source := &eventSource{files: files, perBlock: j.blockEvents}
+	progress := text.NewProgress(j.err, j.terminal, "judging", source.size())
+	open := &kinegatev1.JudgeOpen{
+		Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: j.checked.GetSelection()}},
+		Entries:   kinegatev1.EntryDetail_ENTRY_DETAIL_ACCEPTED,
+		Limits: &kinegatev1.Limits{
+			BlockEventCount: int64(j.blockEvents), BlockCandidateCount: int64(candidatesPerEvent * j.blockEvents),
+		},
+	}
+	start := time.Now()
+	err = pump(ctx, gate, open, source.next, func(b *batch[eventfile.Event], v *kinegate.Verdicts) error {
+		sums.add(v)
+		progress.Set(source.read.Load())
+		if done, err := j.reply(v.Block); err != nil || done && j.outFile == "" {
+			return err
+		}
+		for _, s := range sinks {
+			if err := s.add(b.events, v); err != nil {
+				return err
+			}
+		}
+		return nil
+	})
+	progress.Done()
+	if err != nil {
+		return err
+	}
+	return j.report(sums, sinks, time.Since(start))
+}
+
+// check reads the selection on the server, which also gives it in its own form.
+func (j *judgeRun) check(ctx context.Context, client *kinegate.Client, yaml string) error {
+	ctx, cancel := j.calling(ctx)
+	defer cancel()
+	reply, err := client.Selections.CheckSelection(ctx, &kinegatev1.CheckSelectionRequest{
+		Form: &kinegatev1.CheckSelectionRequest_Yaml{Yaml: yaml},
+	})
+	if err != nil {
+		return err
+	}
+	for _, f := range reply.GetFaults() {
+		_, _ = fmt.Fprintln(j.err, faultText(j.selectionFile, f))
+	}
+	if len(reply.GetFaults()) > 0 {
+		return badInput("%s cannot be used", j.selectionFile)
+	}
+	j.checked = reply
+	return nil
+}
+
+// report prints the summary and closes the sinks.
+func (j *judgeRun) report(sums *tally, sinks []sink, elapsed time.Duration) error {
+	if !j.json {
+		j.print("selection %s, digest %s", j.checked.GetSelection().GetName(), j.checked.GetSelectionDigest())
+		if err := sums.write(j.environment); err != nil {
+			return err
+		}
+	}
+	for _, s := range sinks {
+		if err := s.finish(j.environment); err != nil {
+			return err
+		}
+	}
+	if !j.json && elapsed > 0 {
+		j.print("\n  %.0f events/s including reading", float64(sums.events)/elapsed.Seconds())
+	}
+	return nil
+}
