@@ -3,7 +3,6 @@ package main
 import (
 	"context"
 	"errors"
-	"fmt"
 	"io"
 	"os"
 	"path/filepath"
@@ -14,6 +13,8 @@ import (
 	kinegate "example.org/kinegate/clients/go"
 	"example.org/kinegate/kinematics/particle"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+	"example.org/kinegate/service/api"
+	"example.org/kinegate/service/cmd/kinegate/internal/eventfile"
 	"example.org/kinegate/service/cmd/kinegate/internal/hall"
 	"example.org/kinegate/service/cmd/kinegate/internal/quantity"
 	"example.org/kinegate/service/cmd/kinegate/internal/text"
@@ -51,8 +52,11 @@ type demo struct {
 	keep   string
 }
 
-// blockEvents is the size of the demo's blocks.
-const demoBlockEvents = 500
+// demoBlockEvents is the size of the demo's blocks, hallRun its run number.
+const (
+	demoBlockEvents = 500
+	hallRun         = 1
+)
 
 func (d *demo) run(ctx context.Context) error {
 	if d.events < 100 || d.events > 1000000 {
@@ -177,7 +181,7 @@ func (d *demo) judge(ctx context.Context, gate *kinegate.Client, selection *kine
 
 func hallBlock(events []hall.Event) *kinegatev1.EventBlock {
 	builder := kinegate.NewBuilder(kinegate.MomentumAngles)
-	builder.RunNumber = 1
+	builder.RunNumber = hallRun
 	for _, e := range events {
 		builder.Add(e.ID, e.Objects, e.Beam)
 	}
@@ -209,45 +213,23 @@ func (d *demo) next(events []hall.Event) error {
 	d.print("  kinegate check %s", filepath.Join(folder, "selection.yaml"))
 	d.print("  kinegate reaction \"gamma p -> p eta'\" --beam \"1.5 GeV\"")
 	d.print("  kinegate serve                       run the server for others; kinegate serve --help lists its settings")
-	d.print("\n%s", caution)
+	d.print("\n%s", api.Caution)
 	return nil
 }
 
-// eventsFileColumns is the width of the events file.
-const eventsFileObjects, eventsFileBeams = 10, 4
-
+// writeEvents keeps the events with their true channels.
 func writeEvents(name string, events []hall.Event) error {
+	mix := hall.Mix()
+	rows := make([]eventfile.Event, len(events))
+	for i, e := range events {
+		rows[i] = eventfile.Event{
+			Run: hallRun, ID: e.ID, Objects: e.Objects, Beam: e.Beam, Other: map[string]string{"channel": mix[e.Channel].Name},
+		}
+	}
 	file, err := os.Create(name)
 	if err != nil {
 		return err
 	}
-	_, _ = fmt.Fprintln(file, "# Simulated events of Marrow Hall, an invented experiment. GeV, rad, ns.")
-	heading := "event,channel"
-	for i := 1; i <= eventsFileObjects; i++ {
-		heading += fmt.Sprintf(",class%[1]d,p%[1]d,theta%[1]d,phi%[1]d,direction%[1]d,species%[1]d", i)
-	}
-	for i := 1; i <= eventsFileBeams; i++ {
-		heading += fmt.Sprintf(",beam_energy%[1]d,beam_sigma%[1]d,beam_time%[1]d", i)
-	}
-	_, _ = fmt.Fprintln(file, heading)
-	mix := hall.Mix()
-	for _, e := range events {
-		line := fmt.Sprintf("%d,%s", e.ID, mix[e.Channel].Name)
-		for i := range eventsFileObjects {
-			if i >= len(e.Objects) {
-				line += ",,,,,,"
-				continue
-			}
-			line += objectCells(e.Objects[i])
-		}
-		for i := range eventsFileBeams {
-			if i >= len(e.Beam) {
-				line += ",,,"
-				continue
-			}
-			line += fmt.Sprintf(",%v,%v,%v", e.Beam[i].Energy, e.Beam[i].Sigma, e.Beam[i].Time)
-		}
-		_, _ = fmt.Fprintln(file, line)
-	}
-	return file.Close()
+	comment := "Simulated events of Marrow Hall, an invented experiment."
+	return errors.Join(eventfile.Write(file, comment, kinegate.MomentumAngles, rows), file.Close())
 }

@@ -9,6 +9,8 @@
 //	class1                      photon, positive, negative or neutral; or
 //	q1                          charge: its sign gives the class, 0 a photon; or
 //	pid1                        Monte Carlo particle number: gives class and species
+//	species1                    what the object may be: e, mu, pi, K, p, d joined by
+//	                            "|"; anything if empty
 //	direction1                  1 where only the direction was measured
 //	beam_energy1, beam_sigma1, beam_time1
 //	                            tagged beam candidate 1: GeV, GeV, ns
@@ -24,6 +26,7 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -132,7 +135,6 @@ func (l *layout) object(record []string, c objectColumns) (o kinegate.Object, pr
 	}
 	copy(o.Values[:], values)
 	if c.direction >= 0 && strings.TrimSpace(record[c.direction]) == "1" {
-		const directionMeasured = 6 // the second and third parameter
 		o.Measured = directionMeasured
 	}
 	cell := strings.TrimSpace(record[c.class])
@@ -147,8 +149,16 @@ func (l *layout) object(record []string, c objectColumns) (o kinegate.Object, pr
 	if err != nil {
 		return o, false, fmt.Errorf("column %s: %w", l.header[c.class], err)
 	}
+	if c.species >= 0 && strings.TrimSpace(record[c.species]) != "" {
+		if o.Species, err = speciesNamed(strings.TrimSpace(record[c.species])); err != nil {
+			return o, false, fmt.Errorf("column %s: %w", l.header[c.species], err)
+		}
+	}
 	return o, true, nil
 }
+
+// directionMeasured is the measured mask of the second and third parameter.
+const directionMeasured = 6
 
 // numbers reads several columns that must be all filled or all empty. A column
 // below 0 does not exist and reads as 0.
@@ -186,6 +196,20 @@ func (l *layout) whole(record []string, name string, missing int64) (int64, erro
 		return 0, fmt.Errorf("column %s: %q is not a whole number", l.header[i], record[i])
 	}
 	return n, nil
+}
+
+// species are the bits of the species mask in their order.
+var species = []string{"e", "mu", "pi", "K", "p", "d"}
+
+func speciesNamed(cell string) (mask uint8, err error) {
+	for name := range strings.SplitSeq(cell, "|") {
+		bit := slices.Index(species, name)
+		if bit < 0 {
+			return 0, fmt.Errorf("%q is no species; use %s", name, strings.Join(species, ", "))
+		}
+		mask |= 1 << bit
+	}
+	return mask, nil
 }
 
 func classNamed(cell string) (kinegatev1.ObjectClass, error) {

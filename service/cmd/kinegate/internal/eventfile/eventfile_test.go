@@ -4,6 +4,7 @@ import (
 	"errors"
 	"io"
 	"os"
+	"slices"
 	"strings"
 	"testing"
 
@@ -77,6 +78,30 @@ Event,class1,p1,theta1,phi1,direction1,class2,p2,theta2,phi2,direction2,beam_ene
 	}
 	if len(second.Objects) != 1 || second.Beam == nil || len(second.Beam) != 0 {
 		t.Errorf("second event: %+v", second)
+	}
+}
+
+func TestWriteReadsBack(t *testing.T) {
+	t.Parallel()
+	events := []eventfile.Event{
+		{
+			Run: 3, ID: 1, Other: map[string]string{"channel": "p pi0"},
+			Objects: []kinegate.Object{
+				{Values: [4]float64{0.1, 1.0 / 3, -2}, Class: kinegatev1.ObjectClass_OBJECT_CLASS_PHOTON},
+				{Values: [4]float64{2, 1, 0}, Class: kinegatev1.ObjectClass_OBJECT_CLASS_POSITIVE, Species: 0b10100, Measured: 6},
+			},
+			Beam: []kinegate.BeamCandidate{{Energy: 1.2, Sigma: 0.001, Time: -3.25}},
+		},
+		{Run: 3, ID: 2, Other: map[string]string{"channel": "noise"}, Beam: []kinegate.BeamCandidate{}},
+	}
+	var b strings.Builder
+	if err := eventfile.Write(&b, "Invented.", kinegate.MomentumAngles, events); err != nil {
+		t.Fatal(err)
+	}
+	got, _ := all(t, strings.NewReader(b.String()))
+	if len(got) != 2 || !slices.Equal(got[0].Objects, events[0].Objects) || !slices.Equal(got[0].Beam, events[0].Beam) ||
+		got[0].Other["channel"] != "p pi0" || got[1].ID != 2 || len(got[1].Objects) != 0 || got[1].Beam == nil {
+		t.Errorf("got %+v from\n%s", got, b.String())
 	}
 }
 

@@ -26,6 +26,7 @@ type objectColumns struct {
 	values    []int
 	class     int
 	kind      classKind
+	species   int
 	direction int
 }
 
@@ -109,7 +110,7 @@ func newLayout(header []string) (layout, error) {
 
 // columnsOf finds the columns of one object in its numbered group.
 func columnsOf(group map[string]int, needed []string, optional string) (objectColumns, bool) {
-	c := objectColumns{class: -1, direction: -1}
+	c := objectColumns{class: -1, species: -1, direction: -1}
 	for _, name := range needed {
 		i, ok := group[name]
 		if !ok {
@@ -134,8 +135,10 @@ func columnsOf(group map[string]int, needed []string, optional string) (objectCo
 			break
 		}
 	}
-	if i, ok := group["direction"]; ok {
-		c.direction = i
+	for name, column := range map[string]*int{"direction": &c.direction, "species": &c.species} {
+		if i, ok := group[name]; ok {
+			*column = i
+		}
 	}
 	return c, c.class >= 0
 }
