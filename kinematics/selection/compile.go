@@ -62,8 +62,7 @@ func (c *compiler) fault(field, value, allowed string) *fault.Error {
 	return e
 }
 
-// adopt adds a fault of a lower package under a field. Its own path, if it has one, is
-// taken as lying below the field.
+// adopt adds the faults of a lower package under a field.
 func (c *compiler) adopt(field string, err error) {
 	list, ok := err.(fault.List) //nolint:errorlint // what reaction returns is not wrapped
 	if !ok {
@@ -75,6 +74,9 @@ func (c *compiler) adopt(field string, err error) {
 	}
 	for _, e := range list {
 		adopted := *e
+		if e.Kind == fault.Forbidden {
+			adopted.Problem = e.Field + " " + e.Problem // the field is the law
+		}
 		adopted.Op, adopted.Field = opCompile, field
 		c.faults = append(c.faults, &adopted)
 	}
