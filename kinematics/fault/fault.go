@@ -122,14 +122,13 @@ func (e *Error) Unwrap() error { return e.Err }
 // Is reports whether target is the kind of e, so that errors.Is(err, fault.NotFound)
 // works through any wrapping.
 func (e *Error) Is(target error) bool {
-	kind, ok := target.(Kind) //nolint:errorlint // a kind is compared, not unwrapped
+	kind, ok := target.(Kind)
 	return ok && kind == e.Kind
 }
 
 // KindOf returns the kind of the first Error found in err, and false if there is none.
 func KindOf(err error) (Kind, bool) {
-	var e *Error
-	if errors.As(err, &e) {
+	if e, ok := errors.AsType[*Error](err); ok {
 		return e.Kind, true
 	}
 	return 0, false

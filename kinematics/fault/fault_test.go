@@ -77,10 +77,10 @@ func TestMatchingThroughWrapping(t *testing.T) {
 }
 
 func TestList(t *testing.T) {
-	var list fault.List
-	if list.Err() != nil {
+	if (fault.List{}).Err() != nil {
 		t.Error("an empty list is an error")
 	}
+	list := make(fault.List, 0, 19)
 	for range 18 {
 		list = append(list, fault.Number("x", 1, "< 1"))
 	}

@@ -67,8 +67,7 @@ func parse(data []byte) ([]row, fault.List) {
 // csvFault turns an error of the CSV reader into a fault.
 func csvFault(err error) *fault.Error {
 	e := fault.New(fault.Invalid, "file", "", "comma-separated values as in RFC 4180").In("particle.New")
-	var parseError *csv.ParseError
-	if errors.As(err, &parseError) {
+	if parseError, ok := errors.AsType[*csv.ParseError](err); ok {
 		return e.At(parseError.Line, parseError.Column).Because(parseError.Err.Error())
 	}
 	return e.Because(err.Error())

@@ -4,6 +4,7 @@ import (
 	_ "embed"
 	"errors"
 	"fmt"
+	"maps"
 	"slices"
 	"strconv"
 
@@ -116,11 +117,7 @@ func (b *builder) add(file File) error {
 // names that are taken.
 func (b *builder) claimNames(numbers []int64) fault.List {
 	var list fault.List
-	for name, owner := range b.owner {
-		if slices.Contains(numbers, owner) {
-			delete(b.owner, name)
-		}
-	}
+	maps.DeleteFunc(b.owner, func(_ string, owner int64) bool { return slices.Contains(numbers, owner) })
 	for _, number := range numbers {
 		for _, p := range b.particles[number] {
 			for _, name := range append([]string{p.Name}, p.aliases...) {
@@ -138,10 +135,9 @@ func (b *builder) claimNames(numbers []int64) fault.List {
 // table sorts the particles and indexes them.
 func (b *builder) table(additions bool) *Table {
 	t := &Table{byNumber: map[int64]int{}, byName: map[string]int{}, additions: additions}
-	for _, made := range b.particles {
-		t.particles = append(t.particles, made...)
+	for _, number := range slices.Sorted(maps.Keys(b.particles)) { // positive: antiparticles are made from rows
+		t.particles = append(t.particles, b.particles[number]...)
 	}
-	slices.SortFunc(t.particles, func(x, y Particle) int { return compareNumbers(x.Number, y.Number) })
 	for i, p := range t.particles {
 		t.byNumber[p.Number] = i
 		t.byName[p.Name] = i
@@ -152,18 +148,6 @@ func (b *builder) table(additions bool) *Table {
 	markStrongStable(t.particles)
 	t.digest = digest(t.particles)
 	return t
-}
-
-// compareNumbers orders by magnitude, a particle before its antiparticle.
-func compareNumbers(x, y int64) int {
-	ax, ay := max(x, -x), max(y, -y)
-	switch {
-	case ax != ay && ax < ay, ax == ay && x > y:
-		return -1
-	case x == y:
-		return 0
-	}
-	return 1
 }
 
 // List returns all particles by the magnitude of their number, each particle before

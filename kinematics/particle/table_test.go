@@ -11,21 +11,21 @@ import (
 )
 
 // table returns the standard table with files laid over it.
-func table(t testing.TB, files ...particle.File) *particle.Table {
-	t.Helper()
+func table(tb testing.TB, files ...particle.File) *particle.Table {
+	tb.Helper()
 	tab, err := particle.New(files...)
 	if err != nil {
-		t.Fatalf("New: %v", err)
+		tb.Fatalf("New: %v", err)
 	}
 	return tab
 }
 
 // named returns a particle that the table must have.
-func named(t testing.TB, tab *particle.Table, name string) particle.Particle {
-	t.Helper()
+func named(tb testing.TB, tab *particle.Table, name string) particle.Particle {
+	tb.Helper()
 	p, err := tab.Named(name)
 	if err != nil {
-		t.Fatalf("Named(%q): %v", name, err)
+		tb.Fatalf("Named(%q): %v", name, err)
 	}
 	return p
 }

@@ -10,7 +10,9 @@ import (
 )
 
 // assemble numbers the tree, holds it against the laws and classes its decays.
-func assemble(op string, t *particle.Table, initial []particle.Particle, products []branch, inclusive bool, at position) (*Reaction, error) {
+func assemble(
+	op string, t *particle.Table, initial []particle.Particle, products []branch, inclusive bool, at position,
+) (*Reaction, error) {
 	r := &Reaction{Initial: initial, Inclusive: inclusive}
 	if len(initial) == 0 {
 		r.Initial = nil
@@ -112,7 +114,9 @@ type Decay struct {
 }
 
 // decay checks and classes one decay.
-func (r *Reaction) decay(op string, parent *particle.Particle, number int, daughters []int, inclusive bool, at position) (Decay, fault.List) {
+func (r *Reaction) decay(
+	op string, parent *particle.Particle, number int, daughters []int, inclusive bool, at position,
+) (Decay, fault.List) {
 	var left, right sum
 	left.add(parent)
 	d := Decay{Product: number, Text: r.decayText(parent.Name, daughters), Class: Weak}

@@ -29,11 +29,11 @@ func photons(e1, e2, angle float64) reaction.InitialState {
 }
 
 // describe answers for a reaction in an initial state that must be possible.
-func describe(t testing.TB, tab *particle.Table, text string, in reaction.InitialState) reaction.Channel {
-	t.Helper()
-	c, err := reaction.Describe(parse(t, tab, text), in)
+func describe(tb testing.TB, tab *particle.Table, text string, in reaction.InitialState) reaction.Channel {
+	tb.Helper()
+	c, err := reaction.Describe(parse(tb, tab, text), in)
 	if err != nil {
-		t.Fatalf("Describe(%q, %+v): %v", text, in, err)
+		tb.Fatalf("Describe(%q, %+v): %v", text, in, err)
 	}
 	return c
 }
@@ -127,7 +127,7 @@ func TestDeficits(t *testing.T) {
 // against the excess energy just below and just above, from the other end of the code.
 func TestThresholdAgainstExcess(t *testing.T) {
 	tab := table(t)
-	random := rand.New(rand.NewPCG(3, 5))
+	random := rand.New(rand.NewPCG(3, 5)) //nolint:gosec // test points
 	texts := []string{
 		"gamma p -> K+ Lambda", "p gamma -> p pi0", "gamma gamma -> mu+ mu-", "p p -> p p p pbar", "e- gamma -> e- e+ e-",
 		"K- p -> Omega- K+ K0", "p t3 -> n He3", "gamma d -> p n",

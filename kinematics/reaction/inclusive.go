@@ -87,11 +87,11 @@ type bodySet struct {
 type frontier []bodySet
 
 // Len returns the number of sets.
-func (f frontier) Len() int { return len(f) }
+func (f *frontier) Len() int { return len(*f) }
 
 // Less orders by mass, then by number of particles, then by order of making.
-func (f frontier) Less(i, j int) bool {
-	a, b := &f[i], &f[j]
+func (f *frontier) Less(i, j int) bool {
+	a, b := &(*f)[i], &(*f)[j]
 	if a.mass != b.mass {
 		return a.mass < b.mass
 	}
@@ -102,7 +102,7 @@ func (f frontier) Less(i, j int) bool {
 }
 
 // Swap exchanges two sets.
-func (f frontier) Swap(i, j int) { f[i], f[j] = f[j], f[i] }
+func (f *frontier) Swap(i, j int) { (*f)[i], (*f)[j] = (*f)[j], (*f)[i] }
 
 // Push adds a set.
 func (f *frontier) Push(x any) {

@@ -46,14 +46,27 @@ const (
 
 // String returns the law in words.
 func (l Law) String() string {
-	names := [lawCount]string{
+	names := [...]string{
 		"charge", "baryon number", "electron number", "muon number", "tau number",
 		"strangeness", "charm", "bottomness", "topness",
 	}
-	if l >= lawCount {
-		return "Law(" + strconv.Itoa(int(l)) + ")"
+	if int(l) < len(names) {
+		return names[l]
 	}
-	return names[l]
+	return "Law(" + strconv.Itoa(int(l)) + ")"
+}
+
+// project sets the numbers to 0 whose law is not in the set.
+func (l Laws) project(n particle.Numbers) particle.Numbers {
+	for law, field := range [...]*int{
+		&n.ChargeThirds, &n.BaryonThirds, &n.Electron, &n.Muon, &n.Tau,
+		&n.Strangeness, &n.Charm, &n.Bottomness, &n.Topness,
+	} {
+		if l&(1<<law) == 0 {
+			*field = 0
+		}
+	}
+	return n
 }
 
 // Value returns the number that the law conserves, in thirds for charge and baryon
@@ -140,7 +153,7 @@ func abs(n int) int { return max(n, -n) }
 
 // lawFaults makes a fault for each broken law, with both sides' sums.
 func lawFaults(op, process string, broken []Law, left, right sum, at position) fault.List {
-	var list fault.List
+	list := make(fault.List, 0, len(broken))
 	for _, law := range broken {
 		l, r := law.text(law.Value(left.numbers)), law.text(law.Value(right.numbers))
 		if law == Strangeness {

@@ -90,15 +90,6 @@ func (r *Reaction) Leaves() []int {
 // IsDecay reports whether the left side is one particle.
 func (r *Reaction) IsDecay() bool { return len(r.Initial) == 1 }
 
-// masses returns the nominal masses of the products of the right side.
-func (r *Reaction) masses() []float64 {
-	masses := make([]float64, len(r.Top))
-	for i, top := range r.Top {
-		masses[i] = r.Products[top].Particle.Mass
-	}
-	return masses
-}
-
 // branch is a product while the tree is made, with the position of its name.
 type branch struct {
 	particle  particle.Particle

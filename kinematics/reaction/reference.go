@@ -24,14 +24,15 @@ func (r *Reaction) Product(t *particle.Table, reference string) (int, error) {
 		}
 		return fail("no such product", r.references())
 	}
-	name, count := reference, -1
-	if open := strings.IndexByte(reference, '['); open >= 0 {
-		digits, closed := strings.CutSuffix(reference[open+1:], "]")
+	count := -1
+	name, bracket, counted := strings.Cut(reference, "[")
+	if counted {
+		digits, closed := strings.CutSuffix(bracket, "]")
 		k, err := strconv.Atoi(digits)
 		if !closed || err != nil || k < 0 || strconv.Itoa(k) != digits {
 			return fail("malformed reference", "such as pi0[2] or products[1].daughters[0]")
 		}
-		name, count = reference[:open], k
+		count = k
 	}
 	p, err := t.Named(name)
 	if err != nil {

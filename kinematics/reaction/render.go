@@ -55,11 +55,12 @@ func (r *Reaction) String() string {
 
 // decayText renders one decay.
 func (r *Reaction) decayText(parent string, daughters []int) string {
-	text := parent + " ->"
+	words := make([]string, 0, len(daughters)+2)
+	words = append(words, parent, "->")
 	for _, d := range daughters {
-		text += " " + r.Products[d].Particle.Name
+		words = append(words, r.Products[d].Particle.Name)
 	}
-	return text
+	return strings.Join(words, " ")
 }
 
 // sameDecay reports whether two products are said to decay alike.

@@ -13,21 +13,21 @@ import (
 )
 
 // table returns the standard particle table.
-func table(t testing.TB) *particle.Table {
-	t.Helper()
+func table(tb testing.TB) *particle.Table {
+	tb.Helper()
 	tab, err := particle.New()
 	if err != nil {
-		t.Fatalf("particle.New: %v", err)
+		tb.Fatalf("particle.New: %v", err)
 	}
 	return tab
 }
 
 // parse returns a reaction that must be well formed.
-func parse(t testing.TB, tab *particle.Table, text string) *reaction.Reaction {
-	t.Helper()
+func parse(tb testing.TB, tab *particle.Table, text string) *reaction.Reaction {
+	tb.Helper()
 	r, err := reaction.Parse(tab, text)
 	if err != nil {
-		t.Fatalf("Parse(%q): %v", text, err)
+		tb.Fatalf("Parse(%q): %v", text, err)
 	}
 	return r
 }
@@ -154,7 +154,7 @@ func TestAllFaultsInOrder(t *testing.T) {
 	if !errors.As(err, &list) {
 		t.Fatalf("Parse gives %v", err)
 	}
-	var columns []int
+	columns := make([]int, 0, len(list))
 	for _, e := range list {
 		columns = append(columns, e.Column)
 	}
@@ -212,7 +212,7 @@ func randomSpec(random *rand.Rand) reaction.Spec {
 // text says all, and that Text says so exactly where two alike differ.
 func TestTextAndSpecRoundTrip(t *testing.T) {
 	tab := table(t)
-	random := rand.New(rand.NewPCG(2, 7))
+	random := rand.New(rand.NewPCG(2, 7)) //nolint:gosec // test points
 	plain, structured := 0, 0
 	for range 2000 {
 		spec := randomSpec(random)

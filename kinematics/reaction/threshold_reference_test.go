@@ -27,6 +27,7 @@ func TestPrecisionThreshold(t *testing.T) {
 // particles through text and table. Masses in MeV are used as they stand: the formulas
 // have no unit.
 func thresholdOfCheck(t *testing.T, c reference.Check) (any, bool) {
+	t.Helper()
 	if c.Has("m_nucleus_MeV") {
 		excess, _ := momentum.Excess(c.Float("m_nucleus_MeV"), c.Floats("m_parts_MeV")...)
 		return -excess, true
