@@ -90,7 +90,7 @@ func (f *finder) find(bodies int) bool {
 		for i := range f.numbers {
 			if f.numbers[i] == f.target {
 				one := entry{mass: f.masses[i], count: 1}
-				one.members[0] = int16(i) //nolint:gosec // at most MaxListed
+				one.members[0] = int16(i)
 				ok = ok && f.take(one)
 			}
 		}
