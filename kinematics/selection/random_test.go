@@ -72,7 +72,7 @@ func randomBlock(r *rand.Rand, kind event.Kind, events, most int) *event.Block {
 // limits drawn anew.
 func everything(r *rand.Rand) selection.Selection {
 	limit := func(low, high float64) (least, most *float64) {
-		a, b := low+(high-low)/2*r.Float64(), high-(high-low)/2*r.Float64()
+		a, b := low+float64((high-low)/2*r.Float64()), high-float64((high-low)/2*r.Float64())
 		return &a, &b
 	}
 	// window draws a window that passes often.
