@@ -119,7 +119,7 @@ func (w *worker) noise(n *Noise) {
 	e := d.ThresholdGeV + float64(n.MeanGeV*w.stream.Exponential())
 	cos := between(num.Cos(d.Theta.MaxRad), num.Cos(d.Theta.MinRad), w.stream.Uniform())
 	theta := num.Atan2(math.Sqrt((1-cos)*(1+cos)), cos)
-	_, phi := folded(theta, 2*math.Pi*w.stream.Uniform())
+	_, phi := folded(theta, float64(2*math.Pi*w.stream.Uniform()))
 	sin := num.Sin(theta)
 	o := object{
 		class: event.Photon, mask: event.AllMeasured, label: NoParticle,

@@ -48,7 +48,7 @@ func (o *object) rank() int {
 func (o *object) point(s *random.Stream, theta, phi, sigmaTheta, sigmaPhi float64) {
 	sin := num.Sin(theta)
 	theta += float64(sigmaTheta * s.Normal())
-	phi += float64(sigmaPhi/sin) * s.Normal()
+	phi += float64(sigmaPhi / sin * s.Normal())
 	o.theta, o.phi = folded(theta, phi)
 	sin = num.Sin(o.theta)
 	o.varTheta = sigmaTheta * sigmaTheta

@@ -204,8 +204,8 @@ type leptonDecay struct {
 // fraction: with P.p_a = M E_a and p_l.p_b = (M^2 - m^2)/2 - M E_a the density
 // is y (c - y) with y = M E_a and 2c = M^2 - m^2, whose largest value is c^2/4.
 func (d leptonDecay) fraction(m float64, p []momentum.Four) float64 {
-	c := (m - d.mass) * (m + d.mass) / 2
-	y := m * p[d.own].E
+	c := float64((m - d.mass) * (m + d.mass) / 2)
+	y := float64(m * p[d.own].E)
 	return max(0, y*(c-y)) * 4 / (c * c)
 }
 

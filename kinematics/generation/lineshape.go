@@ -41,11 +41,11 @@ type LineShape struct {
 type resonance struct {
 	shape       LineShape
 	mass, width float64
-	low, high   float64 // static limits of the mass
-	a, b        float64 // daughters' masses of a two-body decay
-	q0          float64 // their momentum at the nominal mass; 0: constant width
-	angleLow    float64 // angle(low)
-	ceiling     float64 // upper bound of shapeRatio within the limits
+	low, high   float64   // static limits of the mass
+	a, b        float64   // daughters' masses of a two-body decay
+	q0          float64   // their momentum at the nominal mass; 0: constant width
+	angleLow    float64   // angle(low)
+	tops        []float64 // tops[i] bounds shapeRatio from low to grid point i
 }
 
 // newResonance prepares a line shape for a particle of the given mass and
@@ -68,12 +68,26 @@ func newResonance(shape LineShape, mass, width, floor float64, daughters []float
 	r.angleLow = r.angle(r.low)
 	// The ratio is smooth on the scale of the limits; its largest value on a fine
 	// grid, two per cent up, bounds it. What still passes counts as an overflow.
-	const grid = 2000
-	for i := range grid + 1 {
-		m := between(r.low, r.high, float64(i)/grid)
-		r.ceiling = max(r.ceiling, 1.02*r.shapeRatio(m))
+	r.tops = make([]float64, shapeGrid+1)
+	top := 0.0
+	for i := range r.tops {
+		m := between(r.low, r.high, float64(i)/shapeGrid)
+		top = max(top, 1.02*r.shapeRatio(m))
+		r.tops[i] = top
 	}
 	return r
+}
+
+// shapeGrid is the number of grid cells for the bound of a line shape.
+const shapeGrid = 2000
+
+// ceiling bounds the ratio that draw returns for a highest mass.
+func (r *resonance) ceiling(high float64) float64 {
+	if !(high > r.low) {
+		return 0
+	}
+	cell := math.Ceil((min(high, r.high) - r.low) / (r.high - r.low) * shapeGrid)
+	return r.tops[min(int(cell), shapeGrid)] * (r.span(high) / math.Pi)
 }
 
 // angle maps a mass so that a Breit-Wigner of constant width in m^2 is flat.

@@ -139,7 +139,7 @@ func (g *group) ceiling(nodes []node, m float64) float64 {
 	}
 	for _, row := range g.rows {
 		if r := nodes[row].resonance; r != nil {
-			w *= r.ceiling * r.span(m-(g.floors-nodes[row].floor)) / math.Pi
+			w *= r.ceiling(m - (g.floors - nodes[row].floor))
 		}
 	}
 	return w
@@ -200,11 +200,12 @@ func (a *angle) acceptance(p, pOut float64) float64 {
 //
 //	1 - cos theta = -ln(1 - u (1 - exp(-2a)))/a,  a = 2 b p p'
 func (a *angle) direction(s *random.Stream, axis momentum.Three, p, pOut float64) momentum.Three {
-	phi := math.Pi * (2*s.Uniform() - 1)
-	if a.phi != nil {
-		phi = a.phi.at((phi + math.Pi) / (2 * math.Pi))
-	}
 	u := s.Uniform()
+	phi := azimuth(u)
+	if a.phi != nil {
+		phi = a.phi.at(u)
+	}
+	u = s.Uniform()
 	var cos, versine float64
 	switch x := 2 * a.slope * p * pOut; {
 	case a.cosTheta != nil:
@@ -219,6 +220,9 @@ func (a *angle) direction(s *random.Stream, axis momentum.Three, p, pOut float64
 	}
 	return around(axis, cos, math.Sqrt(max(0, versine*(1+cos))), phi)
 }
+
+// azimuth is the angle in (-pi, pi) at the fraction u of a turn.
+func azimuth(u float64) float64 { return 2 * math.Pi * (u - 0.5) }
 
 // around is the direction at polar angle theta and azimuth phi around an axis.
 // The azimuth counts from the x axis of the frame, projected across the axis,

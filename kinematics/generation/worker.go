@@ -285,7 +285,7 @@ func (w *worker) decayOf(row int, g *group, ps *PhaseSpace) bool {
 	var direction momentum.Three
 	if g.cosTheta != nil {
 		cos := g.cosTheta.at(w.stream.Uniform())
-		phi := math.Pi * (2*w.stream.Uniform() - 1)
+		phi := azimuth(w.stream.Uniform())
 		direction = around(w.helicityAxis(row), cos, math.Sqrt((1-cos)*(1+cos)), phi)
 		first = &direction
 	}
