@@ -179,8 +179,9 @@ func undecided(difference, size float64) bool {
 // chord returns the chord at s with the gaps of At.
 func (d *Dalitz) chord(c Couple, s, above, below num.DD) Chord {
 	a, b, other := d.order(c)
-	least1, most1 := d.ends(a, b, other, s, above, below)
-	least2, most2 := d.ends(b, a, other, s, above, below)
+	rest := d.less(other)
+	least1, most1 := d.ends(a, b, other, s, above, below, rest)
+	least2, most2 := d.ends(b, a, other, s, above, below, rest)
 	place := func(first, second num.DD) Point {
 		x, y, z := s.Float(), first.Float(), second.Float()
 		switch c {
@@ -195,13 +196,13 @@ func (d *Dalitz) chord(c Couple, s, above, below num.DD) Chord {
 	return Chord{From: place(least1, most2), To: place(most1, least2)}
 }
 
-// ends returns the least and the largest mass squared of body a with the other.
-func (d *Dalitz) ends(a, b, other float64, s, above, below num.DD) (least, most num.DD) {
+// ends returns the least and the largest mass squared of body a with the other; rest is
+// M less the mass of the other.
+func (d *Dalitz) ends(a, b, other float64, s, above, below, rest num.DD) (least, most num.DD) {
 	base := num.Prod2(a, a).Add(num.Prod2(other, other))
 	if s.IsZero() { // Two massless bodies go together, sharing the momentum freely.
 		return base, d.w.Square()
 	}
-	rest := d.less(other)
 	// A = (s - (a+b)^2) + 2a(a+b) and C = ((M-c)^2 - s) + 2c(M-c).
 	near := above.Add(num.Sum2(a, b).MulFloat(2 * a))
 	far := below.Add(rest.MulFloat(2 * other))
