@@ -54,7 +54,7 @@ type Backscatter struct {
 // Domain: beamEnergyGeV >= massGeV > 0, photonEnergyGeV > 0, all finite,
 // 0 <= angleRad <= pi, and (s - m^2)/m^2 <= 1e50. Head on with equal momenta the
 // laboratory is the centre of mass, every photon has the same energy and there is no
-// spectrum: that, and momenta equal to one part in 2^90, is fault.Unsupported.
+// spectrum: that is refused, as are momenta equal to one part in 2^90.
 func NewBackscatter(beamEnergyGeV, massGeV, photonEnergyGeV, angleRad float64) (Backscatter, error) {
 	const op = "photon.NewBackscatter"
 	flight := Flight{beamEnergyGeV, massGeV, photonEnergyGeV, angleRad}
