@@ -99,7 +99,7 @@ func (c *checker) coordinates(x *Coordinates, rows int) {
 	}
 	for i, column := range x.Columns {
 		if i < x.Kind.Columns() {
-			c.length("coordinates."+x.Kind.ColumnName(i), len(column), rows)
+			c.length(x.Kind.String()+"."+x.Kind.ColumnName(i), len(column), rows)
 		} else if column != nil {
 			c.fault("coordinates.columns", strconv.Itoa(i+1), strconv.Itoa(x.Kind.Columns())+" columns")
 		}

@@ -70,7 +70,7 @@ func TestValidateFindsEachFault(t *testing.T) {
 		{"object_offsets[3]", func(b *event.Block) { b.ObjectOffsets[3] = 4 }},
 		{"object_classes[1]", func(b *event.Block) { b.Class[1] = 5 }},
 		{"coordinates.kind", func(b *event.Block) { b.Coordinates.Kind = 9 }},
-		{"coordinates.theta_rad.length", func(b *event.Block) { b.Coordinates.Columns[1] = nil }},
+		{"momentum_angles.theta_rad.length", func(b *event.Block) { b.Coordinates.Columns[1] = nil }},
 		{"coordinates.columns", func(b *event.Block) { b.Coordinates.Columns[3] = []float64{1, 2, 3} }},
 		{"measured_mask[0]", func(b *event.Block) { b.Measured.Bits[0] = 8 }},
 		{"measured_mask.length", func(b *event.Block) { b.Measured.Bits = nil }},
