@@ -307,12 +307,10 @@ func (b *brute) rank() float64 {
 		return 0
 	}
 	for _, r := range b.h.Ranking.ClosestMasses {
-		reference, scale := 0.0, 1.0
+		i, _ := b.reaction.Product(b.table, r.Products[0])
+		reference, scale := b.reaction.Products[i].Particle.Mass, 1.0
 		if r.MassGeV != nil {
 			reference = *r.MassGeV
-		} else {
-			i, _ := b.reaction.Product(b.table, r.Products[0])
-			reference = b.reaction.Products[i].Particle.Mass
 		}
 		if r.ScaleGeV != nil {
 			scale = *r.ScaleGeV
@@ -409,11 +407,11 @@ func compareWithBrute(t *testing.T, s selection.Selection, block *event.Block, c
 			if b.reaction, err = reaction.Parse(table, b.h.Reaction); err != nil {
 				t.Fatal(err)
 			}
-			any := false
+			accepted := false
 			for row, weight := range b.candidates() {
 				b.beamRow = row
 				possible, passing := b.assignments()
-				any = any || len(passing) > 0
+				accepted = accepted || len(passing) > 0
 				k := slices.IndexFunc(got, func(e event.Entry) bool { return int(e.Hypothesis) == h && int(e.BeamRow) == row })
 				if (k >= 0) != (len(possible) > 0) || (k >= 0 && (got[k].Status == event.Accepted) != (len(passing) > 0)) {
 					t.Errorf("event %d, %s, beam row %d: entry %v, %d assignments pass of %d", i, b.h.Reaction, row, k >= 0,
@@ -428,8 +426,8 @@ func compareWithBrute(t *testing.T, s selection.Selection, block *event.Block, c
 					compareEntry(t, b, got[k], weight, possible)
 				}
 			}
-			if out.Accepted[h].Get(i) != any {
-				t.Errorf("event %d, %s: accepted %v, want %v", i, b.h.Reaction, !any, any)
+			if out.Accepted[h].Get(i) != accepted {
+				t.Errorf("event %d, %s: accepted %v, want %v", i, b.h.Reaction, !accepted, accepted)
 			}
 		}
 	}

@@ -82,11 +82,10 @@ func (w *Worker) all(checks []check) bool {
 // inside reports whether the observable lies in its window. NaN, which stands for
 // what cannot be computed, lies outside.
 func (w *Worker) inside(v *window) bool {
-	value := 0.0
 	if v.squared {
-		value = w.square(v)
-	} else {
-		value = w.value(v)
+		square := w.square(v)
+		return square >= v.low && square < v.high
 	}
+	value := w.value(v)
 	return value >= v.low && value < v.high
 }

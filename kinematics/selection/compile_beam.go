@@ -91,7 +91,7 @@ func (d *drafter) fixed(at string, s *InitialState) {
 		return
 	}
 	b := &d.out.beam
-	good := false
+	var good bool
 	switch {
 	case s.BeamOnTarget != nil:
 		var p float64

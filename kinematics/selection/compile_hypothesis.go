@@ -3,6 +3,7 @@ package selection
 import (
 	"slices"
 	"strconv"
+	"strings"
 
 	"example.org/kinegate/kinematics/event"
 	"example.org/kinegate/kinematics/fault"
@@ -320,11 +321,7 @@ func (d *drafter) shape(products []int, conjugate bool) string {
 		parts = append(parts, part+d.shape(p.Daughters, conjugate))
 	}
 	slices.Sort(parts)
-	text := "("
-	for _, part := range parts {
-		text += part + " "
-	}
-	return text + ")"
+	return "(" + strings.Join(parts, " ") + ")"
 }
 
 // extraObjects compiles the rule for extra objects.

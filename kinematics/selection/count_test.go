@@ -165,7 +165,7 @@ func TestTwelvePhotons(t *testing.T) {
 	}
 	// Deal them, so that partners do not stand side by side.
 	dealt := make([]object, 0, len(objects))
-	for k := range len(objects) {
+	for k := range objects {
 		dealt = append(dealt, objects[k*7%12])
 	}
 	s := selection.Selection{Hypotheses: []selection.Hypothesis{h}, AssignmentBudget: 1000}

@@ -71,7 +71,7 @@ func (d *drafter) slotsOf(i int) []int {
 func (d *drafter) exchange(a, b int) []uint8 {
 	slots := make([]uint8, len(d.out.slots))
 	for k := range slots {
-		slots[k] = uint8(k) //nolint:gosec // below MaxProducts
+		slots[k] = uint8(k)
 	}
 	first, second := d.slotsOf(a), d.slotsOf(b)
 	for k := range first {
@@ -140,18 +140,15 @@ func (w *window) text(slots []uint8) string {
 
 // renamed renders a set of slots under their new names.
 func renamed(set, slots []uint8) string {
-	out := slices.Clone(set)
-	for i, k := range out {
+	names := make([]string, 0, len(set))
+	for _, k := range set {
 		if slots != nil {
-			out[i] = slots[k]
+			k = slots[k]
 		}
+		names = append(names, strconv.Itoa(int(k)))
 	}
-	slices.Sort(out)
-	text := ""
-	for _, k := range out {
-		text += strconv.Itoa(int(k)) + "."
-	}
-	return text
+	slices.Sort(names)
+	return strings.Join(names, " ")
 }
 
 // number renders the bits of a number.

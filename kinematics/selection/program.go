@@ -16,8 +16,6 @@ type Program struct {
 	signatures []signature
 	tables     []kindPair
 	outlines   []Outline
-	// centre says that some hypothesis needs the centre-of-mass frame.
-	slots int
 }
 
 // Outline is how one hypothesis was understood.
@@ -68,7 +66,7 @@ type hypothesis struct {
 	variants [][]uint16
 	// tables are those of Program.tables that the windows and the ranking need.
 	tables []uint16
-	// fromEvent says that a slot takes its mass from the event.
+	// kinds are those of Program.kinds that the slots have.
 	kinds []uint16
 
 	extra          ExtraRule

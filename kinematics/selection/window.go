@@ -103,38 +103,42 @@ type form struct {
 
 // form returns the form of a known observable, and false for any other.
 func (o Observable) form() (form, bool) {
-	const several, one = "products", "product"
+	const (
+		several, one   = "products", "product"
+		gev, gev2, rad = "gev", "gev2", "rad"
+		first, second  = "first", "second"
+	)
 	switch o {
 	case InvariantMass:
-		return form{name: "invariant_mass", unit: "gev", products: several}, true
+		return form{name: "invariant_mass", unit: gev, products: several}, true
 	case InvariantMassSquared:
-		return form{name: "invariant_mass_squared", unit: "gev2", products: several}, true
+		return form{name: "invariant_mass_squared", unit: gev2, products: several}, true
 	case MissingMass:
-		return form{name: "missing_mass", unit: "gev", products: several, incoming: true}, true
+		return form{name: "missing_mass", unit: gev, products: several, incoming: true}, true
 	case MissingMassSquared:
-		return form{name: "missing_mass_squared", unit: "gev2", products: several, incoming: true}, true
+		return form{name: "missing_mass_squared", unit: gev2, products: several, incoming: true}, true
 	case Energy:
-		return form{name: "energy", unit: "gev", products: several, frame: true}, true
+		return form{name: "energy", unit: gev, products: several, frame: true}, true
 	case Momentum:
-		return form{name: "momentum", unit: "gev", products: several, frame: true}, true
+		return form{name: "momentum", unit: gev, products: several, frame: true}, true
 	case TransverseMomentum:
-		return form{name: "transverse_momentum", unit: "gev", products: several, frame: true}, true
+		return form{name: "transverse_momentum", unit: gev, products: several, frame: true}, true
 	case Angle:
-		return form{name: "angle", unit: "rad", products: several, frame: true}, true
+		return form{name: "angle", unit: rad, products: several, frame: true}, true
 	case OpeningAngle:
-		return form{name: "opening_angle", unit: "rad", products: "first", second: "second", single: true, frame: true}, true
+		return form{name: "opening_angle", unit: rad, products: first, second: second, single: true, frame: true}, true
 	case Coplanarity:
-		return form{name: "coplanarity", unit: "rad", products: "first", second: "second"}, true
+		return form{name: "coplanarity", unit: rad, products: first, second: second}, true
 	case MissingDirection:
-		return form{name: "missing_direction", unit: "rad", products: one, single: true, incoming: true}, true
+		return form{name: "missing_direction", unit: rad, products: one, single: true, incoming: true}, true
 	case MomentumTransfer:
-		return form{name: "momentum_transfer", unit: "gev2", products: several, initial: true, incoming: true}, true
+		return form{name: "momentum_transfer", unit: gev2, products: several, initial: true, incoming: true}, true
 	case MomentumTransferPrime:
-		return form{name: "momentum_transfer_prime", unit: "gev2", products: several, initial: true, incoming: true}, true
+		return form{name: "momentum_transfer_prime", unit: gev2, products: several, initial: true, incoming: true}, true
 	case TimeDifference:
 		return form{name: "time_difference", unit: "ns"}, true
 	case UnusedPhotonEnergy:
-		return form{name: "unused_photon_energy", unit: "gev"}, true
+		return form{name: "unused_photon_energy", unit: gev}, true
 	case VertexZ:
 		return form{name: "vertex_z", unit: "m"}, true
 	case observableCount:

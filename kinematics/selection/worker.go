@@ -248,7 +248,7 @@ func (w *Worker) best(members []int) int16 {
 			best = h
 		}
 	}
-	return int16(best) //nolint:gosec // at most MaxHypotheses
+	return int16(best)
 }
 
 // match finds the objects that fit each signature.
