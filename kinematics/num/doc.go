@@ -7,6 +7,6 @@
 // two on some processors and not on others; from package math only functions with
 // an exactly rounded or exact result are used.
 //
-// The elementary functions descend from the Go standard library, from Sun's
-// fdlibm and from S. L. Moshier's Cephes library; see NOTICE.
+// The polynomials of the elementary functions are those of FreeBSD's mathematical library
+// and the Go standard library; see NOTICE.
 package num
