@@ -22,19 +22,18 @@ const (
 // case throughout no more than that. A name that holds the whole text as its first part, or whose title holds it as a word, is
 // near. Greek letters and raised signs are read as the plain-text names have them.
 func (t *Table) Nearest(name string) []string {
-	const longest = 4 * maxNameBytes
-	if name == "" || len(name) > longest {
+	query := plain(name[:min(len(name), 4*maxNameBytes)])
+	if query == "" || len(query) > maxNameBytes {
 		return nil
 	}
-	query := plain(name)
 	type candidate struct{ cost, index int }
 	best := make([]candidate, 0, len(t.particles))
 	// About one edit for every six letters, and never a wholly different name.
 	limit := min(costEdit+len(query)/3, costEdit*len(query)-1)
 	for i, p := range t.particles {
-		cost := titleCost(query, p.Title)
-		for _, known := range append([]string{p.Name}, p.aliases...) {
-			cost = min(cost, nameCost(query, known))
+		cost := min(titleCost(query, p.Title), nameCost(query, p.Name))
+		for _, alias := range p.aliases {
+			cost = min(cost, nameCost(query, alias))
 		}
 		if cost <= limit {
 			best = append(best, candidate{cost, i})
@@ -71,13 +70,16 @@ func nameCost(query, known string) int {
 // titleCost is small if the query is a word of the title or the whole of it.
 func titleCost(query, title string) int {
 	const never = 1 << 20
-	lower := strings.ToLower(query)
-	if lower == strings.ToLower(title) {
+	if strings.EqualFold(query, title) {
 		return costSlip
 	}
-	words := strings.FieldsFunc(strings.ToLower(title), func(r rune) bool { return r == ' ' || r == ',' })
-	if len(query) > 2 && slices.Contains(words, lower) {
-		return costEdit
+	if len(query) <= 2 {
+		return never
+	}
+	for word := range strings.FieldsFuncSeq(title, func(r rune) bool { return r == ' ' || r == ',' }) {
+		if strings.EqualFold(query, word) {
+			return costEdit
+		}
 	}
 	return never
 }
@@ -85,11 +87,11 @@ func titleCost(query, title string) int {
 // editCost is the weighted optimal string alignment distance: the least cost of
 // insertions, deletions, substitutions and transpositions of neighbours, none of them
 // inside another (R. Lowrance and R. A. Wagner, J. ACM 22 (1975) 177, restricted form).
+// b is a name, of at most maxNameBytes.
 func editCost(a, b string) int {
-	before := make([]int, len(b)+1)
-	last := make([]int, len(b)+1)
-	row := make([]int, len(b)+1)
-	for j := range last {
+	var rows [3][maxNameBytes + 1]int
+	before, last, row := &rows[0], &rows[1], &rows[2]
+	for j := range len(b) + 1 {
 		last[j] = j * costEdit
 	}
 	for i := 1; i <= len(a); i++ {

@@ -128,8 +128,11 @@ func Describe(r *Reaction, in InitialState) (Channel, error) {
 		return c, nil
 	}
 	g, variable := in.geometry(first.Mass, second.Mass)
-	for _, f := range []*Reach{&c.Nominal, &c.Lightest} {
-		c.hold(f, &g, variable, shares(first, second, f.Particles))
+	c.hold(&c.Nominal, &g, variable, shares(first, second, nominal))
+	c.Lightest = c.Nominal
+	if c.Widened {
+		c.Lightest.Particles = lightest
+		c.hold(&c.Lightest, &g, variable, shares(first, second, lightest))
 	}
 	c.judge(len(r.Top) == 1 && !r.Inclusive, in.Kind != Unstated)
 	return c, nil

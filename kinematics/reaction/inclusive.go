@@ -1,7 +1,6 @@
 package reaction
 
 import (
-	"container/heap"
 	"slices"
 
 	"example.org/kinegate/kinematics/particle"
@@ -80,18 +79,15 @@ type bodySet struct {
 	bodies  int
 	order   int // order of making, which settles ties
 	last    int // candidate added last
-	before  int // index of the set without it
+	without int // index of the set without it
 }
 
-// frontier is a heap of sets by mass.
+// frontier is a binary heap of sets, the lightest on top (J. W. J. Williams, Commun. ACM
+// 7 (1964) 347).
 type frontier []bodySet
 
-// Len returns the number of sets.
-func (f *frontier) Len() int { return len(*f) }
-
-// Less orders by mass, then by number of particles, then by order of making.
-func (f *frontier) Less(i, j int) bool {
-	a, b := &(*f)[i], &(*f)[j]
+// before orders by mass, then by number of particles, then by order of making.
+func (a *bodySet) before(b *bodySet) bool {
 	if a.mass != b.mass {
 		return a.mass < b.mass
 	}
@@ -101,22 +97,36 @@ func (f *frontier) Less(i, j int) bool {
 	return a.order < b.order
 }
 
-// Swap exchanges two sets.
-func (f *frontier) Swap(i, j int) { (*f)[i], (*f)[j] = (*f)[j], (*f)[i] }
-
-// Push adds a set.
-func (f *frontier) Push(x any) {
-	if n, ok := x.(bodySet); ok {
-		*f = append(*f, n)
+// push adds a set.
+func (f *frontier) push(n *bodySet) {
+	h := append(*f, *n)
+	for i := len(h) - 1; i > 0 && h[i].before(&h[(i-1)/2]); i = (i - 1) / 2 {
+		h[i], h[(i-1)/2] = h[(i-1)/2], h[i]
 	}
+	*f = h
 }
 
-// Pop takes the last set.
-func (f *frontier) Pop() any {
-	old := *f
-	n := old[len(old)-1]
-	*f = old[:len(old)-1]
-	return n
+// pop takes the lightest set.
+func (f *frontier) pop() bodySet {
+	h := *f
+	top := h[0]
+	h[0] = h[len(h)-1]
+	h = h[:len(h)-1]
+	for i := 0; ; {
+		least := i
+		for child := 2*i + 1; child <= 2*i+2 && child < len(h); child++ {
+			if h[child].before(&h[least]) {
+				least = child
+			}
+		}
+		if least == i {
+			break
+		}
+		h[i], h[least] = h[least], h[i]
+		i = least
+	}
+	*f = h
+	return top
 }
 
 // lightest finds the set of particles of the table with the smallest sum of masses and
@@ -135,11 +145,11 @@ func lightest(t *particle.Table, target particle.Numbers, flavourOpen bool) []pa
 			}
 		}
 	}
-	open := frontier{{last: -1, before: -1}}
+	open := frontier{{last: -1, without: -1}}
 	var done []bodySet
 	seen := map[particle.Numbers]bool{}
 	for order := 1; len(open) > 0 && len(done) < searchSteps; {
-		n, _ := heap.Pop(&open).(bodySet)
+		n := open.pop()
 		if seen[n.numbers] {
 			continue
 		}
@@ -156,9 +166,9 @@ func lightest(t *particle.Table, target particle.Numbers, flavourOpen bool) []pa
 			if seen[sum] || !inside(sum, target, flavourOpen) {
 				continue
 			}
-			heap.Push(&open, bodySet{
+			open.push(&bodySet{
 				mass: n.mass + candidates[i].Mass, numbers: sum, bodies: n.bodies + 1,
-				order: order, last: i, before: len(done) - 1,
+				order: order, last: i, without: len(done) - 1,
 			})
 			order++
 		}
@@ -171,7 +181,7 @@ func trace(candidates []particle.Particle, done []bodySet, n bodySet) []particle
 	var picked []int
 	for n.last >= 0 {
 		picked = append(picked, n.last)
-		n = done[n.before]
+		n = done[n.without]
 	}
 	slices.Sort(picked)
 	list := make([]particle.Particle, len(picked))
