@@ -81,7 +81,10 @@ func (f *front) RegisterService(desc *grpc.ServiceDesc, impl any) {
 		add(m.MethodName, true, func(srv any, c *call) error { return f.unary(c, srv, m.Handler) })
 	}
 	for _, s := range desc.Streams {
-		add(s.StreamName, !s.ClientStreams, func(srv any, c *call) error { return s.Handler(srv, c) })
+		add(s.StreamName, !s.ClientStreams, func(srv any, c *call) error {
+			f.writeOpened(c)
+			return s.Handler(srv, c)
+		})
 	}
 	f.server.RegisterService(&wrapped, impl)
 }

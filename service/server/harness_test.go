@@ -90,14 +90,14 @@ func quick() Options {
 
 // start runs a server until the test ends; change may adapt options, deps and, before
 // it serves, the server itself.
-func start(t *testing.T, change ...func(*Options, *Deps)) *running {
+func start(t testing.TB, change ...func(*Options, *Deps)) *running {
 	t.Helper()
 	r := prepare(t, change...)
 	r.serve(t)
 	return r
 }
 
-func prepare(t *testing.T, change ...func(*Options, *Deps)) *running {
+func prepare(t testing.TB, change ...func(*Options, *Deps)) *running {
 	t.Helper()
 	checkLeaks(t)
 	r := &running{
@@ -117,7 +117,7 @@ func prepare(t *testing.T, change ...func(*Options, *Deps)) *running {
 	return r
 }
 
-func (r *running) serve(t *testing.T) {
+func (r *running) serve(t testing.TB) {
 	t.Helper()
 	if err := r.Listen(t.Context()); err != nil {
 		t.Fatal(err)
@@ -136,7 +136,7 @@ func (r *running) serve(t *testing.T) {
 }
 
 // dial connects to a listener in memory.
-func (r *running) dial(t *testing.T, where string, options ...grpc.DialOption) *grpc.ClientConn {
+func (r *running) dial(t testing.TB, where string, options ...grpc.DialOption) *grpc.ClientConn {
 	t.Helper()
 	options = append([]grpc.DialOption{
 		grpc.WithTransportCredentials(insecure.NewCredentials()),
@@ -151,13 +151,13 @@ func (r *running) dial(t *testing.T, where string, options ...grpc.DialOption) *
 }
 
 // general connects to the general listener.
-func (r *running) general(t *testing.T) *grpc.ClientConn {
+func (r *running) general(t testing.TB) *grpc.ClientConn {
 	t.Helper()
 	return r.dial(t, r.options.GeneralAddress)
 }
 
 // eventually waits until something holds.
-func eventually(t *testing.T, what string, holds func() bool) {
+func eventually(t testing.TB, what string, holds func() bool) {
 	t.Helper()
 	for end := time.Now().Add(5 * time.Second); time.Now().Before(end); time.Sleep(time.Millisecond) {
 		if holds() {
@@ -168,7 +168,7 @@ func eventually(t *testing.T, what string, holds func() bool) {
 }
 
 // checkLeaks reports goroutines of ours or of gRPC's server that a test leaves behind.
-func checkLeaks(t *testing.T) {
+func checkLeaks(t testing.TB) {
 	t.Helper()
 	before := ours()
 	t.Cleanup(func() {
@@ -200,7 +200,7 @@ func ours() int {
 
 // reasonOf holds an error against the contract of every error that callers see, and
 // returns its reason and metadata.
-func reasonOf(t *testing.T, err error) (api.Reason, map[string]string) {
+func reasonOf(t testing.TB, err error) (api.Reason, map[string]string) {
 	t.Helper()
 	s, ok := status.FromError(err)
 	if err == nil || !ok {
@@ -236,7 +236,7 @@ func reasonOf(t *testing.T, err error) (api.Reason, map[string]string) {
 }
 
 // wantReason checks the reason of an error and returns its metadata.
-func wantReason(t *testing.T, err error, want api.Reason) map[string]string {
+func wantReason(t testing.TB, err error, want api.Reason) map[string]string {
 	t.Helper()
 	got, metadata := reasonOf(t, err)
 	if got != want {
@@ -302,7 +302,7 @@ func faultNames(err error) []string {
 
 // metric is the value of a counter or gauge, or the count of a histogram, summed over
 // the series whose labels hold all of the given values.
-func (r *running) metric(t *testing.T, name string, values ...string) float64 {
+func (r *running) metric(t testing.TB, name string, values ...string) float64 {
 	t.Helper()
 	families, err := r.registry.Gather()
 	if err != nil {
@@ -336,7 +336,7 @@ func holdsAll(m *dto.Metric, values []string) bool {
 }
 
 // writeFile writes a file into the test's folder.
-func writeFile(t *testing.T, path string, data []byte) {
+func writeFile(t testing.TB, path string, data []byte) {
 	t.Helper()
 	if err := os.WriteFile(path, data, 0o600); err != nil {
 		t.Fatal(err)

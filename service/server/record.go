@@ -26,6 +26,17 @@ func (f *front) write(line *zerolog.Event, c *call, code string, took time.Durat
 		Msg("call")
 }
 
+// writeOpened writes the line of a stream that begins; its other line comes when it
+// ends, which may be in hours.
+func (f *front) writeOpened(c *call) {
+	f.callLog.Well().
+		Str("method", printable(c.method)).
+		Str("identity", c.identity).
+		Str("request_id", c.requestID).
+		Str("reference", c.reference).
+		Msg("stream")
+}
+
 // isHealth reports whether a method belongs to the health check.
 func isHealth(method string) bool {
 	return strings.HasPrefix(method, "/"+healthpb.Health_ServiceDesc.ServiceName+"/")

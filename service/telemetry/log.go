@@ -28,7 +28,7 @@ func NewLogger(w io.Writer, level string) (zerolog.Logger, error) {
 
 // CallLog writes one line for each finished call.
 type CallLog struct {
-	well, failed zerolog.Logger
+	well, refused, failed zerolog.Logger
 }
 
 // NewCallLog returns a CallLog on a logger; dropped is called for each line of a
@@ -37,13 +37,14 @@ func NewCallLog(log zerolog.Logger, dropped func()) *CallLog {
 	if dropped == nil {
 		dropped = func() {}
 	}
+	burst := func(then zerolog.Sampler) zerolog.Logger {
+		return log.Sample(&zerolog.BurstSampler{Burst: burstLines, Period: burstPeriod, NextSampler: then})
+	}
 	return &CallLog{
-		well: log.Sample(&zerolog.BurstSampler{
-			Burst: burstLines, Period: burstPeriod, NextSampler: &zerolog.BasicSampler{N: keepOneIn},
-		}),
-		failed: log.Sample(&zerolog.BurstSampler{
-			Burst: burstLines, Period: burstPeriod, NextSampler: held(dropped),
-		}),
+		well:    burst(&zerolog.BasicSampler{N: keepOneIn}),
+		refused: burst(held(dropped)),
+		// Apart from the refused ones, so that a flood of those hides no fault of ours.
+		failed: burst(held(dropped)),
 	}
 }
 
@@ -51,7 +52,7 @@ func NewCallLog(log zerolog.Logger, dropped func()) *CallLog {
 func (c *CallLog) Well() *zerolog.Event { return c.well.Info() }
 
 // Refused starts the line of a call that its caller must change or repeat.
-func (c *CallLog) Refused() *zerolog.Event { return c.failed.Warn() }
+func (c *CallLog) Refused() *zerolog.Event { return c.refused.Warn() }
 
 // Failed starts the line of a call that met a fault of ours.
 func (c *CallLog) Failed() *zerolog.Event { return c.failed.Error() }
