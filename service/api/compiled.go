@@ -1,7 +1,11 @@
 package api
 
 import (
+	"cmp"
+	"errors"
 	"fmt"
+	"slices"
+	"strings"
 
 	"example.org/kinegate/kinematics/fault"
 	"example.org/kinegate/kinematics/particle"
@@ -27,10 +31,13 @@ func compile(m *kinegatev1.Selection, table *particle.Table) (*compiledSelection
 		return nil, fault.New(fault.Unsupported, "", "", "").Because(err.Error())
 	}
 	form, faults := selectionForm(m)
+	program, err := selection.Compile(&form, table)
+	if compiling, ok := errors.AsType[fault.List](err); ok {
+		faults = append(faults, beyond(faults, compiling)...)
+	}
 	if len(faults) > 0 {
 		return nil, faults
 	}
-	program, err := selection.Compile(&form, table)
 	if err != nil {
 		return nil, err
 	}
@@ -49,28 +56,65 @@ func (c *compiledSelection) largestReply(limits blockLimits, detail selection.De
 	return c.program.LargestReplyBytes(limits.form(), detail)
 }
 
-// readSelection reads the text of a selection file. The faults are those of the
-// text alone.
-func readSelection(text string) (*kinegatev1.Selection, strictyaml.Positions, []*kinegatev1.SelectionFault) {
+// readSelection reads the text of a selection file and compiles it. The faults are
+// those of the text and of what it says, with their places. The message holds what
+// could be read.
+func readSelection(text string, table *particle.Table) (*kinegatev1.Selection, *compiledSelection, fault.List) {
 	m := &kinegatev1.Selection{}
-	positions, faults := strictyaml.Unmarshal([]byte(text), m)
-	var messages []*kinegatev1.SelectionFault
-	for _, f := range faults {
-		messages = append(messages, &kinegatev1.SelectionFault{
-			Field: f.Field, Message: f.Message, Line: int32(f.Line), Column: int32(f.Column), //nolint:gosec // texts are below 4 MiB
-		})
+	positions, textFaults := strictyaml.Unmarshal([]byte(text), m)
+	var faults fault.List
+	for _, f := range textFaults {
+		faults = append(faults, fault.New(fault.Invalid, f.Field, "", "").Because(f.Message).At(f.Line, f.Column))
 	}
-	return m, positions, messages
+	c, err := compile(m, table)
+	if err != nil {
+		for _, f := range beyond(faults, faultsOf(err)) {
+			at := positions.Find(f.Field)
+			faults = append(faults, f.At(at.Line, at.Column))
+		}
+	}
+	if len(faults) > 0 {
+		slices.SortStableFunc(faults, func(a, b *fault.Error) int {
+			return cmp.Or(cmp.Compare(a.Line, b.Line), cmp.Compare(a.Column, b.Column))
+		})
+		return m, nil, faults
+	}
+	return m, c, nil
 }
 
-// selectionFaults converts the faults that compiling found, with their places in
-// the text where there was one.
-func selectionFaults(err error, positions strictyaml.Positions) []*kinegatev1.SelectionFault {
+// faultsOf is the list of faults that an error holds.
+func faultsOf(err error) fault.List {
+	if list, ok := errors.AsType[fault.List](err); ok {
+		return list
+	}
+	if e, ok := errors.AsType[*fault.Error](err); ok {
+		return fault.List{e}
+	}
+	return nil
+}
+
+// beyond returns the faults that are not just the consequence of one in seen: a
+// field that could not be read is also missing.
+func beyond(seen, faults fault.List) fault.List {
+	within := func(a, b string) bool { return a == b || strings.HasPrefix(a, b+".") || strings.HasPrefix(a, b+"[") }
+	var news fault.List
+	for _, f := range faults {
+		if !slices.ContainsFunc(seen, func(s *fault.Error) bool { return within(f.Field, s.Field) || within(s.Field, f.Field) }) {
+			news = append(news, f)
+		}
+	}
+	return news
+}
+
+// selectionFaults converts faults for the caller. The position stands in fields of
+// its own and not in the message.
+func selectionFaults(faults fault.List) []*kinegatev1.SelectionFault {
 	var messages []*kinegatev1.SelectionFault
-	for _, v := range Explain(err).Violations {
-		at := positions.Find(v.Field)
+	for _, f := range faults {
+		bare := *f
+		bare.Field, bare.Line, bare.Column = "", 0, 0
 		messages = append(messages, &kinegatev1.SelectionFault{
-			Field: v.Field, Message: v.Problem, Line: int32(at.Line), Column: int32(at.Column), //nolint:gosec // as above
+			Field: f.Field, Message: sentence(&bare), Line: int32(f.Line), Column: int32(f.Column), //nolint:gosec // texts are below 4 MiB
 		})
 	}
 	return messages

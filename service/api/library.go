@@ -30,13 +30,9 @@ func NewLibrary(table *particle.Table) *Library {
 // Add reads the text of a selection file and makes it the newest of its name. With
 // faults the library stays as it was, and the error is a *Failure that lists them.
 func (l *Library) Add(text string) error {
-	message, positions, faults := readSelection(text)
+	message, c, faults := readSelection(text, l.table)
 	if len(faults) > 0 {
-		return selectionTextError(message.GetName(), faults)
-	}
-	c, err := compile(message, l.table)
-	if err != nil {
-		return selectionTextError(message.GetName(), selectionFaults(err, positions))
+		return selectionError(message.GetName(), faults)
 	}
 	l.mu.Lock()
 	defer l.mu.Unlock()
@@ -88,13 +84,4 @@ func (l *Library) namesLocked() []string {
 	}
 	slices.Sort(names)
 	return names
-}
-
-// selectionTextError is the refusal of a selection file.
-func selectionTextError(name string, faults []*kinegatev1.SelectionFault) error {
-	f := &Failure{Reason: SelectionInvalid, Message: "selection " + name + ": " + describeFault(faults[0])}
-	for _, v := range faults {
-		f.Violations = append(f.Violations, Violation{Field: v.GetField(), Problem: describeFault(v)})
-	}
-	return f
 }

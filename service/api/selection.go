@@ -4,15 +4,11 @@ import (
 	"context"
 	"math/bits"
 	"runtime"
-	"slices"
-	"strconv"
-	"strings"
 	"time"
 
 	"example.org/kinegate/kinematics/fault"
 	"example.org/kinegate/kinematics/selection"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
-	"example.org/kinegate/service/api/strictyaml"
 )
 
 // selectionService checks selections and judges events.
@@ -37,20 +33,22 @@ func newSelectionService(deps Deps) *selectionService {
 // CheckSelection reports every fault of a selection.
 func (s *selectionService) CheckSelection(_ context.Context, request *kinegatev1.CheckSelectionRequest) (*kinegatev1.CheckSelectionResponse, error) {
 	response := &kinegatev1.CheckSelectionResponse{}
-	message := request.GetSelection()
-	var positions strictyaml.Positions
+	var c *compiledSelection
+	var faults fault.List
 	switch form := request.GetForm().(type) {
 	case *kinegatev1.CheckSelectionRequest_Yaml:
-		message, positions, response.Faults = readSelection(form.Yaml)
-	case nil:
+		response.Selection, c, faults = readSelection(form.Yaml, s.deps.Table)
+	case *kinegatev1.CheckSelectionRequest_Selection:
+		response.Selection = form.Selection
+		var err error
+		if c, err = compile(form.Selection, s.deps.Table); err != nil {
+			faults = faultsOf(err)
+		}
+	default:
 		return nil, fault.New(fault.Invalid, "form", "empty", "selection or yaml")
 	}
-	response.Selection = message
-	c, err := compile(message, s.deps.Table)
-	if err != nil {
-		response.Faults = append(response.Faults, beyond(response.GetFaults(), selectionFaults(err, positions))...)
-	}
-	if len(response.GetFaults()) > 0 {
+	if len(faults) > 0 {
+		response.Faults = selectionFaults(faults)
 		return response, nil
 	}
 	response.SelectionDigest = c.digest
@@ -75,30 +73,6 @@ func (s *selectionService) JudgeBlock(ctx context.Context, request *kinegatev1.J
 		return nil, err
 	}
 	return &kinegatev1.JudgeBlockResponse{Verdict: verdict}, nil
-}
-
-// beyond returns the faults that are not just the consequence of one in seen: a
-// field that could not be read is also missing.
-func beyond(seen, faults []*kinegatev1.SelectionFault) []*kinegatev1.SelectionFault {
-	related := func(a, b string) bool { return a == b || strings.HasPrefix(a, b+".") || strings.HasPrefix(a, b+"[") }
-	var news []*kinegatev1.SelectionFault
-	for _, f := range faults {
-		if !slices.ContainsFunc(seen, func(s *kinegatev1.SelectionFault) bool {
-			return related(f.GetField(), s.GetField()) || related(s.GetField(), f.GetField())
-		}) {
-			news = append(news, f)
-		}
-	}
-	return news
-}
-
-// describeFault is a fault with its place.
-func describeFault(f *kinegatev1.SelectionFault) string {
-	text := f.GetMessage()
-	if f.GetLine() > 0 {
-		text = "line " + strconv.Itoa(int(f.GetLine())) + ": " + text
-	}
-	return text
 }
 
 // onesCount counts the bits of a column.
