@@ -136,20 +136,31 @@ func (in *InitialState) geometry(m1, m2 float64) (geometry, bool) {
 		g.sin, g.cos = num.FromFloat(in.Angle).Sincos()
 	case FourMomenta:
 		a, b := in.Momenta[0].P, in.Momenta[1].P
-		_, _, g.now = Body{Mass: m1, Value: a.Norm()}.motion()
-		second.Value = b.Norm()
 		if (a == momentum.Three{}) {
 			return g, false
 		}
+		_, _, g.now = motionOf(m1, a)
+		g.p, g.t, g.e = motionOf(m2, b)
 		if (b != momentum.Three{}) {
 			g.sin, g.cos = angleBetween(a, b)
 		}
+		return g, g.e.Sign() > 0
 	case TotalMass:
 		return g, false
 	}
 	g.given = second.Given
 	g.p, g.t, g.e = second.motion()
 	return g, g.e.Sign() > 0
+}
+
+// motionOf returns momentum, kinetic and total energy of a particle.
+func motionOf(mass float64, p momentum.Three) (length, kinetic, energy num.DD) {
+	square := num.Prod2(p.X, p.X).Add(num.Prod2(p.Y, p.Y)).Add(num.Prod2(p.Z, p.Z))
+	energy = square.Add(num.Prod2(mass, mass)).Sqrt()
+	if energy.Sign() > 0 {
+		kinetic = square.Div(energy.AddFloat(mass))
+	}
+	return square.Sqrt(), kinetic, energy
 }
 
 // angleBetween returns sine and cosine of the angle between two vectors other than 0.
