@@ -65,7 +65,7 @@ func scan(listing string, fused *regexp.Regexp) (offences []string, asked, read 
 		}
 
 		if sources[file] == nil {
-			text, err := os.ReadFile(file) //nolint:gosec // A file that the compiler has just named.
+			text, err := os.ReadFile(file)
 			if err != nil {
 				return nil, 0, 0, fmt.Errorf("source of a listed instruction: %w", err)
 			}
