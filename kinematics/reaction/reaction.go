@@ -41,8 +41,9 @@ type Product struct {
 	// Daughters are the numbers of the daughters, empty for a product that is not
 	// said to decay.
 	Daughters []int
-	// Name is the reference by name, such as pi0[2]: name and count of products of
-	// that name, depth first from 0.
+	// Name is the reference by name: the bare name of the only product so named, and
+	// otherwise such as pi0[2], the name with the count of products of that name,
+	// depth first from 0.
 	Name string
 	// Path is the reference by place, such as products[1].daughters[0].
 	Path string
@@ -127,5 +128,10 @@ func (r *Reaction) number(products []branch) {
 	}
 	for i := range products {
 		r.Top = append(r.Top, add(&products[i], -1, "products["+strconv.Itoa(i)+"]"))
+	}
+	for n := range r.Products {
+		if p := &r.Products[n]; counts[p.Particle.Number] == 1 {
+			p.Name = p.Particle.Name
+		}
 	}
 }

@@ -215,7 +215,7 @@ func TestOutline(t *testing.T) {
 	if o.Reaction != "gamma p -> p pi0 pi0, pi0 -> gamma gamma" {
 		t.Errorf("reaction %q", o.Reaction)
 	}
-	if want := []string{"p[0]", "pi0[0]", "gamma[0]", "gamma[1]", "pi0[1]", "gamma[2]", "gamma[3]"}; !slices.Equal(o.Products, want) {
+	if want := []string{"p", "pi0[0]", "gamma[0]", "gamma[1]", "pi0[1]", "gamma[2]", "gamma[3]"}; !slices.Equal(o.Products, want) {
 		t.Errorf("products %v, want %v", o.Products, want)
 	}
 	if want := []string{"missing_direction(p)"}; !slices.Equal(o.Observables, want) {
