@@ -136,6 +136,26 @@ func (e *Entries) Append(row Entry) {
 	e.AssignmentOffsets = append(e.AssignmentOffsets, int32(len(e.Assignment))) //nolint:gosec // bounded by the reply's size
 }
 
+// DropEvent takes the entries of the event being written out again.
+func (e *Entries) DropEvent() {
+	n := int(e.Offsets[len(e.Offsets)-1])
+	*e = Entries{
+		Offsets:           e.Offsets,
+		Hypothesis:        e.Hypothesis[:n],
+		BeamRow:           e.BeamRow[:n],
+		Weight:            e.Weight[:n],
+		Status:            e.Status[:n],
+		Tried:             e.Tried[:n],
+		ChiSquare:         e.ChiSquare[:n],
+		NDF:               e.NDF[:n],
+		Probability:       e.Probability[:n],
+		Observables:       e.Observables[:e.ObservableOffsets[n]],
+		ObservableOffsets: e.ObservableOffsets[:n+1],
+		Assignment:        e.Assignment[:e.AssignmentOffsets[n]],
+		AssignmentOffsets: e.AssignmentOffsets[:n+1],
+	}
+}
+
 // EndEvent closes the event being written; the next Append starts another.
 func (e *Entries) EndEvent() {
 	e.Offsets = append(e.Offsets, int32(e.Len())) //nolint:gosec // bounded by the reply's size

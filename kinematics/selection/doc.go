@@ -28,6 +28,14 @@
 //	worker.Append(&out, &outs[0])
 //	worker.Append(&out, &outs[1])
 //
+// A single event may take as long as the work budget lasts. Worker.Stop, if it is set,
+// is asked in between and ends the judging, for a cancelled call or a deadline:
+//
+//	worker.Stop = func() bool { return ctx.Err() != nil || late() }
+//	if n := worker.Judge(block, from, to, &out); n < to-from {
+//		worker.Expire(to-from-n, &out)
+//	}
+//
 // The block must have passed event.Block.Validate. The caller sets the digest of
 // the output.
 //

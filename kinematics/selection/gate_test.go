@@ -165,6 +165,38 @@ func TestTaggedCandidates(t *testing.T) {
 	}
 }
 
+// TestStop checks that Stop ends the judging inside an event, which is then expired and
+// has no entries, and that the next call starts afresh.
+func TestStop(t *testing.T) {
+	p := compile(t, selection.Hypothesis{
+		Reaction: "-> pi0 pi0 pi0 pi0 pi0 pi0, pi0 -> gamma gamma", Ranking: closest("pi0[0]"), ExtraObjects: anything(),
+	}, selection.Hypothesis{Reaction: "-> gamma", ExtraObjects: anything()})
+	block := makeBlock([][]object{photons(1), photons(12), photons(1)}, nil)
+	w := p.NewWorker(selection.AllEntries)
+	asked := 0
+	w.Stop = func() bool {
+		asked++
+		return asked == 3
+	}
+	var out event.VerdictBlock
+	w.Reset(&out)
+	if n := w.Judge(block, 0, 3, &out); n != 2 {
+		t.Fatalf("%d events judged, want 2", n)
+	}
+	w.Expire(1, &out)
+	if !slices.Equal(out.Status, []event.Status{event.Good, event.Expired, event.Expired}) {
+		t.Errorf("statuses %v", out.Status)
+	}
+	if !slices.Equal(out.Entries.Offsets, []int32{0, 1, 1, 1}) || out.Gate[0] != 1 {
+		t.Errorf("offsets %v, gate %v", out.Entries.Offsets, out.Gate)
+	}
+	w.Stop = nil
+	w.Reset(&out)
+	if n := w.Judge(block, 0, 3, &out); n != 3 || out.Gate[0] != 7 {
+		t.Errorf("%d events judged, gate %v", n, out.Gate)
+	}
+}
+
 // TestStatuses checks that events that cannot be judged get their status and nothing
 // else, and do not disturb their neighbours.
 func TestStatuses(t *testing.T) {

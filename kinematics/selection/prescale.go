@@ -8,9 +8,9 @@ import "math/bits"
 //
 // for a prescale of N, so that one in N of all ids is kept, which ones depends on
 // the id and the hypothesis' name alone, and two hypotheses choose independently.
-// The hash is the output function of SplitMix64 (G. L. Steele, D. Lea, C. H. Flood,
-// Fast splittable pseudorandom number generators, OOPSLA 2014, figure 16); the salt
-// is the 64-bit FNV-1a hash of the name (RFC 9923).
+// The hash is the output function of SplitMix64 (G. L. Steele, D. Lea, C. H. Flood, Fast
+// splittable pseudorandom number generators, OOPSLA 2014), the salt the 64-bit FNV-1a
+// hash of the name (G. Fowler, L. C. Noll, K.-P. Vo).
 func (h *hypothesis) kept(id int64) bool {
 	if h.prescale <= 1 {
 		return true

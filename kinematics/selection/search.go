@@ -144,7 +144,7 @@ func (w *Worker) place(k int) bool {
 		w.left-- // a way that ends here is work too
 	}
 	for ; choices != 0; choices &= choices - 1 {
-		if w.left <= 0 {
+		if w.left <= 0 || w.interrupted() {
 			s.exhausted = true
 			return false
 		}
@@ -164,6 +164,18 @@ func (w *Worker) place(k int) bool {
 		}
 	}
 	return true
+}
+
+// askEvery is the number of steps between two questions to Stop, a power of two.
+const askEvery = 256
+
+// interrupted counts a step of the search and reports whether Stop ends the judging.
+func (w *Worker) interrupted() bool {
+	w.work++
+	if w.work%askEvery == 0 && w.Stop != nil && w.Stop() {
+		w.stopped = true
+	}
+	return w.stopped
 }
 
 // complete judges a complete assignment with every open candidate. It returns false

@@ -23,6 +23,10 @@ const (
 // Worker judges events with a Program. It serves one goroutine at a time; several
 // workers may share the Program.
 type Worker struct {
+	// Stop is asked now and then while an event is judged, at least once in some
+	// hundred assignments, and ends the judging by true; nil never does.
+	Stop func() bool
+
 	program *Program
 	detail  Detail
 
@@ -34,8 +38,11 @@ type Worker struct {
 	tables  []table
 	// matching are the objects that fit each signature.
 	matching []set
-	// left is what is left of the work budget.
-	left int64
+	// left is what is left of the work budget, work counts steps of searches, and
+	// stopped says that Stop ended the judging.
+	left    int64
+	work    uint
+	stopped bool
 
 	// The hypothesis being tested: its beam candidates, the initial state being
 	// tried, and the objects of the slots.
@@ -113,10 +120,13 @@ func resized[T any](s []T, n int) []T {
 	return s[:n]
 }
 
-// Judge appends the verdicts on events [from, to) of the block to out.
-func (w *Worker) Judge(block *event.Block, from, to int, out *event.VerdictBlock) {
-	w.block = block
-	for i := from; i < to; i++ {
+// Judge appends the verdicts on events [from, to) of the block to out and returns how
+// many it appended: all, unless Stop ended the judging. The last one then is Expired,
+// and so should be the rest.
+func (w *Worker) Judge(block *event.Block, from, to int, out *event.VerdictBlock) int {
+	w.block, w.stopped = block, false
+	i := from
+	for ; i < to && !w.stopped; i++ {
 		appendEvent(out)
 		status := block.Check(i)
 		if status == event.Good && tooManyCandidates(block, i) {
@@ -131,6 +141,7 @@ func (w *Worker) Judge(block *event.Block, from, to int, out *event.VerdictBlock
 		}
 	}
 	w.block = nil
+	return i - from
 }
 
 // MaxCandidates is the largest number of tagged beam candidates of an event. An
@@ -205,13 +216,32 @@ func (w *Worker) event(i int, out *event.VerdictBlock) event.Status {
 		w.tables[k].ready = false
 	}
 	w.match()
-	at := len(out.Status)
-	gate, veto, finished := false, false, true
+	finished := true
 	for h := range p.hypotheses {
 		w.rank[h] = math.NaN()
 		if finished {
 			finished = w.test(h, out.Entries)
 		}
+	}
+	if w.stopped {
+		if out.Entries != nil {
+			out.Entries.DropEvent()
+		}
+		return event.Expired
+	}
+	w.decide(out)
+	if !finished {
+		return event.BudgetUsed
+	}
+	return event.Good
+}
+
+// decide sets the bits of the event from the ranks of the hypotheses.
+func (w *Worker) decide(out *event.VerdictBlock) {
+	p := w.program
+	at := len(out.Status)
+	gate, veto := false, false
+	for h := range p.hypotheses {
 		if !w.accepted(h) {
 			continue
 		}
@@ -219,7 +249,7 @@ func (w *Worker) event(i int, out *event.VerdictBlock) event.Status {
 		hypothesis := &p.hypotheses[h]
 		switch hypothesis.role {
 		case Gate:
-			gate = gate || hypothesis.kept(w.block.EventIDs[i])
+			gate = gate || hypothesis.kept(w.block.EventIDs[w.index])
 		case Veto:
 			veto = true
 		case Shadow:
@@ -231,10 +261,6 @@ func (w *Worker) event(i int, out *event.VerdictBlock) event.Status {
 	for g, members := range p.groups {
 		out.Best[g][at] = w.best(members)
 	}
-	if !finished {
-		return event.BudgetUsed
-	}
-	return event.Good
 }
 
 // accepted reports whether hypothesis h accepts the event.
