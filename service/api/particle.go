@@ -31,7 +31,7 @@ func newParticleService(table, standard *particle.Table) *particleService {
 	s := &particleService{table: table, byNumber: map[int64]int{}}
 	for i, p := range table.List() {
 		s.byNumber[p.Number] = i
-		s.messages = append(s.messages, particleMessage(p, originOf(p, standard)))
+		s.messages = append(s.messages, particleMessage(p, table, originOf(p, standard)))
 	}
 	return s
 }
@@ -112,7 +112,7 @@ func originOf(p particle.Particle, standard *particle.Table) kinegatev1.Particle
 }
 
 // particleMessage converts a row of the table.
-func particleMessage(p particle.Particle, origin kinegatev1.ParticleOrigin) *kinegatev1.Particle {
+func particleMessage(p particle.Particle, table *particle.Table, origin kinegatev1.ParticleOrigin) *kinegatev1.Particle {
 	m := &kinegatev1.Particle{
 		ParticleNumber:     p.Number,
 		Name:               p.Name,
@@ -136,6 +136,10 @@ func particleMessage(p particle.Particle, origin kinegatev1.ParticleOrigin) *kin
 		Source:             p.Source,
 		Origin:             origin,
 		NotBreitWigner:     p.NotBreitWigner != "",
+	}
+	// Every particle of a table has its antiparticle there.
+	if anti, err := table.Conjugate(p); err == nil {
+		m.AntiparticleName = anti.Name
 	}
 	if p.TwiceSpin >= 0 {
 		m.SpinDoubled = int32Of(p.TwiceSpin)

@@ -409,6 +409,9 @@ type Particle struct {
 	// Particle number of the antiparticle; the own number where the particle is
 	// its own antiparticle.
 	AntiparticleNumber int64 `protobuf:"varint,24,opt,name=antiparticle_number,json=antiparticleNumber,proto3" json:"antiparticle_number,omitempty"`
+	// Canonical name of the antiparticle; the own name where the particle is its
+	// own antiparticle.
+	AntiparticleName string `protobuf:"bytes,28,opt,name=antiparticle_name,json=antiparticleName,proto3" json:"antiparticle_name,omitempty"`
 	// Where the values come from, in words.
 	Source string `protobuf:"bytes,25,opt,name=source,proto3" json:"source,omitempty"`
 	// Whether the row is built in or came from a user file.
@@ -618,6 +621,13 @@ func (x *Particle) GetAntiparticleNumber() int64 {
 	return 0
 }
 
+func (x *Particle) GetAntiparticleName() string {
+	if x != nil {
+		return x.AntiparticleName
+	}
+	return ""
+}
+
 func (x *Particle) GetSource() string {
 	if x != nil {
 		return x.Source
@@ -659,7 +669,7 @@ const file_kinegate_v1_particle_proto_rawDesc = "" +
 	"\x15ListParticlesResponse\x123\n" +
 	"\tparticles\x18\x01 \x03(\v2\x15.kinegate.v1.ParticleR\tparticles\x12&\n" +
 	"\x0fnext_page_token\x18\x02 \x01(\tR\rnextPageToken\x12#\n" +
-	"\rtable_version\x18\x03 \x01(\tR\ftableVersion\"\xdb\b\n" +
+	"\rtable_version\x18\x03 \x01(\tR\ftableVersion\"\x88\t\n" +
 	"\bParticle\x12'\n" +
 	"\x0fparticle_number\x18\x01 \x01(\x03R\x0eparticleNumber\x12\x12\n" +
 	"\x04name\x18\x02 \x01(\tR\x04name\x12\x18\n" +
@@ -689,7 +699,8 @@ const file_kinegate_v1_particle_proto_rawDesc = "" +
 	"bottomness\x18\x16 \x01(\x05R\n" +
 	"bottomness\x12\x18\n" +
 	"\atopness\x18\x17 \x01(\x05R\atopness\x12/\n" +
-	"\x13antiparticle_number\x18\x18 \x01(\x03R\x12antiparticleNumber\x12\x16\n" +
+	"\x13antiparticle_number\x18\x18 \x01(\x03R\x12antiparticleNumber\x12+\n" +
+	"\x11antiparticle_name\x18\x1c \x01(\tR\x10antiparticleName\x12\x16\n" +
 	"\x06source\x18\x19 \x01(\tR\x06source\x123\n" +
 	"\x06origin\x18\x1a \x01(\x0e2\x1b.kinegate.v1.ParticleOriginR\x06origin\x12(\n" +
 	"\x10not_breit_wigner\x18\x1b \x01(\bR\x0enotBreitWignerB\x17\n" +

@@ -79,7 +79,7 @@ func (e *environment) showParticle(ctx context.Context, client *kinegate.Client,
 	t.Row("spin, parity", spinText(p))
 	t.Row("quantum numbers", quantumText(p))
 	if p.GetAntiparticleNumber() != p.GetParticleNumber() {
-		t.Row("antiparticle", fmt.Sprint(p.GetAntiparticleNumber()))
+		t.Row("antiparticle", fmt.Sprintf("%s, particle number %d", p.GetAntiparticleName(), p.GetAntiparticleNumber()))
 	} else {
 		t.Row("antiparticle", "itself")
 	}
@@ -90,7 +90,7 @@ func (e *environment) showParticle(ctx context.Context, client *kinegate.Client,
 		t.Row("remark", "no Breit-Wigner: mass and width only say where the state lies")
 	}
 	t.Row("source", p.GetSource())
-	t.Row("table", reply.GetTableVersion())
+	t.Row("table version", reply.GetTableVersion())
 	if err := t.Write(e.out); err != nil {
 		return err
 	}
