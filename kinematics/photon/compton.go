@@ -57,7 +57,7 @@ func (c Compton) At(thetaRad float64) (ComptonPoint, error) {
 	if thetaRad == math.Pi {
 		sine, cosine = 1, 0
 	}
-	shift := 2 * c.ratio * (sine * sine)
+	shift := float64(2 * c.ratio * (sine * sine))
 	p := 1 / (1 + shift)
 	// cos(theta) = (cos + sin)(cos - sin) of the half angle.
 	differential := kleinNishina(p, shift, (cosine-sine)*(cosine+sine))

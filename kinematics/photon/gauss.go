@@ -30,7 +30,7 @@ func panel(low, high float64, f func(float64) float64) float64 {
 	middle := low + half
 	sum := 0.0
 	for _, g := range gaussNodes() {
-		step := half * g.node
+		step := float64(half * g.node)
 		sum += float64(g.weight * (f(middle-step) + f(middle+step)))
 	}
 	return float64(half * sum)

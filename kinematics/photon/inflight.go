@@ -68,17 +68,17 @@ func (f Flight) Scatter(to Direction) (FlightPoint, error) {
 	if math.IsNaN(to.PhiRad) || math.IsInf(to.PhiRad, 0) {
 		return FlightPoint{}, fault.Number("phi_rad", to.PhiRad, "finite").In(op)
 	}
-	momentum := math.Sqrt(f.EnergyGeV-f.MassGeV) * math.Sqrt(f.EnergyGeV+f.MassGeV)
+	momentum := float64(math.Sqrt(f.EnergyGeV-f.MassGeV) * math.Sqrt(f.EnergyGeV+f.MassGeV))
 	before := f.againstParticle(momentum, haversine(f.AngleBetweenBeamsRad))
 	after := f.againstParticle(momentum, haversine(to.ThetaRad))
 	turn := haversineBetween(f.AngleBetweenBeamsRad, to.ThetaRad, to.PhiRad)
 
 	energy := f.PhotonEnergyGeV * (before / (after + float64(2*f.PhotonEnergyGeV*turn)))
-	ratio := f.PhotonEnergyGeV / f.MassGeV * (before / f.MassGeV)
+	ratio := float64(f.PhotonEnergyGeV / f.MassGeV * (before / f.MassGeV)) // 2 ratio is a sum to the compiler
 	// The haversine of the scattering angle in the rest frame; rounding can pass 1 by
 	// a few units of the last place, where the angle is pi.
 	rest := math.Min(1, f.MassGeV/before*(f.MassGeV/after)*turn)
-	shift := 2 * ratio * rest
+	shift := float64(2 * ratio * rest)
 	p := 1 / (1 + shift)
 	cosine := 1 - float64(2*rest)
 	jacobian := f.MassGeV / after
@@ -101,7 +101,7 @@ func (f Flight) TotalBarn() (float64, error) {
 	if err := f.check(op); err != nil {
 		return 0, err
 	}
-	momentum := math.Sqrt(f.EnergyGeV-f.MassGeV) * math.Sqrt(f.EnergyGeV+f.MassGeV)
+	momentum := float64(math.Sqrt(f.EnergyGeV-f.MassGeV) * math.Sqrt(f.EnergyGeV+f.MassGeV))
 	before := f.againstParticle(momentum, haversine(f.AngleBetweenBeamsRad))
 	c, err := NewCompton(f.PhotonEnergyGeV*(before/f.MassGeV), f.MassGeV)
 	if err != nil {

@@ -177,7 +177,7 @@ func PairCreationPeak() (velocity, crossSection float64) {
 
 // pairSlope is the derivative in PairCreationPeak.
 func pairSlope(beta float64) float64 {
-	square := beta * beta
+	square := float64(beta * beta)
 	complement := (1 - beta) * (1 + beta)
 	l := 2 * num.Atanh(beta)
 	three := 3 - float64(square*square)

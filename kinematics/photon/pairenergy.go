@@ -116,7 +116,7 @@ func (e PairEnergy) Excess() float64 { return e.excess.Float() }
 
 // Side tells whether the energy is below, at or above the threshold of the pair. The
 // excess is carried exactly or to double-double precision, so At means equality.
-func (e PairEnergy) Side() num.Side { return num.Side(e.excess.Sign()) }
+func (e PairEnergy) Side() num.Side { return num.SideOf(e.excess.Hi, 0) }
 
 // Velocity returns the velocity of each particle of the pair in its centre of mass,
 //

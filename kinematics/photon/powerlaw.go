@@ -90,14 +90,12 @@ func (p PowerLaw) opacity(energyGeV, massGeV float64) float64 {
 		}
 		return down * powerIntegral(q, math.Max(0, up))
 	}
-	sum, from := 0.0, 0.0
+	// F varies over v of order 1/(|q| + 1) near the threshold, or up to v2.
+	sum, from := 0.0, lowestShare*math.Min(hardest, 1/(1+math.Abs(q)))
 	if softest > 0 {
-		flat := shape(softest)
-		sum = flat * weightedPairs(lowestShare*softest, softest, func(float64) float64 { return 1 })
 		from = softest
-	} else {
-		// F varies over v of order 1/(|q| + 1) near the threshold, or up to v2.
-		from = lowestShare * math.Min(hardest, 1/(1+math.Abs(q)))
+		flat := weightedPairs(lowestShare*softest, softest, func(float64) float64 { return 1 })
+		sum = float64(shape(softest) * flat)
 	}
 	sum += weightedPairs(from, hardest, shape)
 	ratio := massGeV / energyGeV * (massGeV / p.MinGeV)
