@@ -101,6 +101,7 @@ func New(deps Deps) (*Services, error) {
 func (s *Services) Register(r grpc.ServiceRegistrar) {
 	kinegatev1.RegisterParticleServiceServer(r, s.particle)
 	kinegatev1.RegisterReactionServiceServer(r, &reactionService{table: s.deps.Table})
+	kinegatev1.RegisterDecayServiceServer(r, &decayService{table: s.deps.Table})
 	kinegatev1.RegisterSelectionServiceServer(r, s.selection)
 	kinegatev1.RegisterInfoServiceServer(r, &infoService{deps: s.deps})
 }
