@@ -52,7 +52,7 @@ func TestDescribeDecay(t *testing.T) {
 // TestKaonInFlight holds the daughters' momentum and the flight against the handbook:
 // p* = 206 MeV and c tau = 2.6844 cm (Review of Particle Physics, from memory).
 func TestKaonInFlight(t *testing.T) {
-	const decay = "K_S -> pi+ pi-"
+	const decay = "K0_S -> pi+ pi-"
 	m, err := describeDecay(t, &kinegatev1.DescribeDecayRequest{Decay: decay, DistancesM: []float64{0, 0.1}})
 	if err != nil {
 		t.Fatal(err)
