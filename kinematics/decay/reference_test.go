@@ -10,6 +10,7 @@ import (
 )
 
 func must[T any](t *testing.T) func(T, error) T {
+	t.Helper()
 	return func(value T, err error) T {
 		t.Helper()
 		if err != nil {

@@ -316,7 +316,7 @@ func negated(xs []float64) []float64 {
 func (c *Collision) Excess(masses ...float64) (float64, num.Side) {
 	over := c.over(masses...)
 	excess := over.Div(c.sys.W.Add(breakup.Sum(masses...)))
-	return excess.Float(), num.Side(over.Sign())
+	return excess.Float(), num.SideOf(over.Hi, 0)
 }
 
 // closed returns the fault for a final state that the energy does not reach.

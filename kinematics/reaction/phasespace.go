@@ -22,7 +22,8 @@ import (
 //
 // Accuracy: 4e-15 relative for two bodies and for massless ones, 2e-13 for the rest
 // (measured against closed forms, other orders of the bodies and 50-digit integrals).
-// excess = 0 gives 0; for massless bodies alone it is an Invalid fault.
+// excess = 0 gives 0; for massless bodies alone it is an Invalid fault. Other excesses
+// are within 1e-60..1e30, masses 0 or within 1e-30..1e30.
 //
 // Each integral runs over the logarithm of M - (smallest M) over W - m - M, by the
 // trapezoidal rule. In that variable every branch point of the integrand, all at real
@@ -48,8 +49,8 @@ func PhaseSpaceVolume(excess float64, masses ...float64) (float64, error) {
 		}
 	}
 	sum := breakup.Sum(masses...).Float()
-	if !(excess >= 0 && excess <= largest) || excess+sum == 0 {
-		return 0, fault.Number("excess_energy_gev", excess, ">= 0, <= 1e30 and > 0 for massless bodies").In(op)
+	if inside := excess >= smallest*smallest && excess <= largest; !inside && (excess != 0 || sum == 0) {
+		return 0, fault.Number("excess_energy_gev", excess, "within 1e-60..1e30, or 0 for bodies with mass").In(op)
 	}
 	if sum == 0 {
 		return masslessVolume(excess, n), nil

@@ -192,8 +192,11 @@ func (r *TwoBody) atTransfer(v Variable, ends *transferEnds, x float64) []breaku
 		return []breakup.Direction{breakup.Along()}
 	case x == backward:
 		return []breakup.Direction{breakup.Against()}
-	case scale.IsZero() || fore.Sign() < 0 || aft.Sign() < 0:
+	case scale.IsZero():
 		return nil
 	}
-	return []breakup.Direction{{Fore: fore.Div(scale), Aft: aft.Div(scale)}}
+	if d, ok := breakup.Between(fore.Div(scale), aft.Div(scale)); ok {
+		return []breakup.Direction{d}
+	}
+	return nil
 }

@@ -21,8 +21,10 @@ func wantFault(t *testing.T, err error, kind fault.Kind, field string) {
 	}
 }
 
-// collisionOf and productsOf make what a table row names.
+// collisionOf fails the test where no collision could be made, and productsOf where no
+// products could.
 func collisionOf(t *testing.T) func(Collision, error) Collision {
+	t.Helper()
 	return func(c Collision, err error) Collision {
 		t.Helper()
 		if err != nil {
@@ -228,7 +230,7 @@ func checkLaws(t *testing.T, mass [4]float64, total CentreOfMass, b Branch) {
 		if !near(p.LabEnergy*p.LabEnergy, p.LabMomentum*p.LabMomentum+m*m, 1e-14) || !near(p.LabKinetic+m, p.LabEnergy, 1e-14) {
 			t.Errorf("product %d is off its mass shell: %+v", i, p)
 		}
-		if p.CMPerLab*p.LabPerCM != 0 && !near(p.CMPerLab*p.LabPerCM, 1, 1e-15) {
+		if p.CMPerLab > 0 && !math.IsInf(p.CMPerLab, 1) && !near(p.CMPerLab*p.LabPerCM, 1, 1e-15) {
 			t.Errorf("Jacobians are not inverse: %v, %v", p.CMPerLab, p.LabPerCM)
 		}
 	}
@@ -245,6 +247,53 @@ func TestJacobianIsTheDerivative(t *testing.T) {
 				t.Errorf("product %d at %v: %v, difference quotient %v", product, cosine, got, math.Abs(slope))
 			}
 		}
+	}
+}
+
+// TestExtremes takes reactions from all over the magnitudes that are allowed: every
+// answer is a finite number (or a Jacobian's limit) and keeps to the laws.
+func TestExtremes(t *testing.T) {
+	random := rand.New(rand.NewPCG(1, 2)) //nolint:gosec // seeded on purpose
+	pick := func() float64 {
+		switch random.IntN(4) {
+		case 0:
+			return 0
+		case 1:
+			return []float64{smallest, largest, 1}[random.IntN(3)]
+		}
+		return math.Pow(10, 60*random.Float64()-30)
+	}
+	open := 0
+	for range 3000 {
+		mass := [4]float64{pick(), math.Max(smallest, pick()), pick(), pick()}
+		c, err := OnTarget(Body{Mass: mass[0], Value: pick()}, mass[1])
+		if err != nil {
+			t.Fatal(err)
+		}
+		r, err := c.TwoBody(mass[2], mass[3])
+		if err != nil {
+			continue
+		}
+		open++
+		for v := range Variable(8) {
+			solutions, err := r.Solve(Query{Variable: v, Product: random.IntN(2), Values: []float64{0, 1e-10, 0.5, 1}})
+			if err != nil {
+				wantFault(t, err, fault.Unsupported, "query.variable")
+			}
+			for _, solution := range solutions {
+				for _, b := range solution.Branches {
+					checkLaws(t, mass, c.CentreOfMass(), b)
+					for _, x := range []float64{b.T, b.U, b.TPrime, b.UPrime, b.Products[0].LabAngle, b.Products[1].LabAngle, b.Products[0].CMCosine} {
+						if math.IsNaN(x) || math.IsInf(x, 0) {
+							t.Fatalf("masses %v: %+v", mass, b)
+						}
+					}
+				}
+			}
+		}
+	}
+	if open < 500 {
+		t.Errorf("only %d open channels", open)
 	}
 }
 

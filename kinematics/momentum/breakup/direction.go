@@ -35,6 +35,23 @@ func AtCosine(cosine float64) Direction {
 	return Direction{Fore: num.Sum2(1, cosine).Scale(-1), Aft: num.Sum2(1, -cosine).Scale(-1)}
 }
 
+// Between returns the direction with cos^2(theta*/2) and sin^2(theta*/2) of two values
+// that each carry their own digits and add up to 1 but for their errors: the smaller one
+// counts and the other is 1 less it, so that no error makes a direction longer than 1.
+// It is false where the smaller one is below 0. Two values above 1/2, which come of
+// errors as large as they, are divided by their sum.
+func Between(fore, aft num.DD) (Direction, bool) {
+	const half = 0.5
+	switch {
+	case fore.Hi > half && aft.Hi > half:
+		sum := fore.Add(aft)
+		return Direction{Fore: fore.Div(sum), Aft: aft.Div(sum)}, true
+	case fore.Cmp(aft) < 0:
+		return Direction{Fore: fore, Aft: fore.Neg().AddFloat(1)}, fore.Sign() >= 0
+	}
+	return Direction{Fore: aft.Neg().AddFloat(1), Aft: aft}, aft.Sign() >= 0
+}
+
 // Opposite returns the direction turned by pi.
 func (d Direction) Opposite() Direction { return Direction{Fore: d.Aft, Aft: d.Fore} }
 

@@ -116,7 +116,7 @@ func (l *Leg) Kinetic() num.DD { return l.kinetic }
 // where it then goes backward.
 //
 //	the sign of 2mE - 2WE*, which is that of P/E - p*/E*
-func (l *Leg) Carry() num.Side { return num.Side(l.carry.Sign()) }
+func (l *Leg) Carry() num.Side { return num.SideOf(l.carry.Hi, 0) }
 
 // Lab is the motion of a body in the laboratory.
 type Lab struct {

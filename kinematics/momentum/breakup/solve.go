@@ -112,11 +112,12 @@ func (l *Leg) withMomenta(sin, cos num.DD, momenta ...num.DD) []Direction {
 		cosine := l.sys.W.Mul(p).Mul(cos).Sub(l.sys.P.Mul(l.energy)).Div(l.sys.E.Mul(l.momentum))
 		quarter := p.Mul(sin).Div(l.momentum).Square().Scale(-2)
 		large := cosine.Abs().AddFloat(1).Scale(-1)
-		small := quarter.Div(large)
-		if cosine.Sign() >= 0 {
-			out = append(out, Direction{Fore: large, Aft: small})
-		} else {
-			out = append(out, Direction{Fore: small, Aft: large})
+		fore, aft := large, quarter.Div(large)
+		if cosine.Sign() < 0 {
+			fore, aft = aft, fore
+		}
+		if d, ok := Between(fore, aft); ok {
+			out = append(out, d)
 		}
 	}
 	return out
@@ -141,6 +142,5 @@ func (l *Leg) AtLabKinetic(t num.DD) (d Direction, ok bool) {
 	case t.Float() == most.Float():
 		return Along(), true
 	}
-	d = Direction{Fore: t.Sub(least).Div(spread), Aft: most.Sub(t).Div(spread)}
-	return d, d.Fore.Sign() >= 0 && d.Aft.Sign() >= 0
+	return Between(t.Sub(least).Div(spread), most.Sub(t).Div(spread))
 }
