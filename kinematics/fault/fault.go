@@ -90,9 +90,12 @@ func (e *Error) Error() string {
 	return strings.Join(parts, ": ")
 }
 
-// subject is the field with its value.
+// subject is the field with its value. A broken law is a sentence of its own, which
+// complaint makes.
 func (e *Error) subject() string {
 	switch {
+	case e.Kind == Forbidden:
+		return ""
 	case e.Value == "":
 		return e.Field
 	case e.Field == "":
@@ -106,6 +109,9 @@ func (e *Error) complaint() string {
 	text := e.Problem
 	if text == "" {
 		text = e.Kind.Error()
+	}
+	if e.Kind == Forbidden {
+		text = e.Field + " is " + text + ": " + e.Value
 	}
 	if e.Allowed != "" {
 		text += ", allowed: " + e.Allowed

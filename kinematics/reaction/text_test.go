@@ -119,7 +119,7 @@ func TestParseFaults(t *testing.T) {
 		{"gamma p -> K0 Sigma+, K0 -> pi+ pi-", fault.Invalid, 23, "decay", "K0", "allowed: K0_S or K0_L"},
 		{"eta -> gamma", fault.Invalid, 5, "decay", "1 products", "two products or more"},
 		{"gamma p -> K+ n", fault.Forbidden, 9, "strangeness", "left 0, right +1", "not conserved in gamma p -> K+ n"},
-		{"gamma p -> K0 Lambda", fault.Forbidden, 9, "charge", "left +1, right 0", "equal sums"},
+		{"gamma p -> K0 Lambda", fault.Forbidden, 9, "charge", "left +1, right 0", "charge is not conserved in gamma p -> K0 Lambda: left +1, right 0"},
 		{"p p -> p pi+", fault.Forbidden, 5, "baryon number", "left +2, right +1", "not conserved"},
 		{"gamma p -> p t", fault.Forbidden, 9, "charge", "left +1, right +5/3", "not conserved"},
 		{"nu_mu n -> e- p", fault.Forbidden, 9, "electron number", "left 0, right +1", "not conserved"},
