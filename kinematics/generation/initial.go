@@ -166,7 +166,8 @@ func (o *onTarget) draw(s *random.Stream) state {
 		return o.atRest(e)
 	}
 	size := o.Motion.FermiMomentumGeV * num.Cbrt(s.Uniform())
-	return o.moving(e, isotropic(s, size))
+	u := s.Uniform()
+	return o.moving(e, isotropic(u, s.Uniform(), size))
 }
 
 // beamMomentum is sqrt((E - m)(E + m)).

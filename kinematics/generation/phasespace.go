@@ -85,9 +85,12 @@ func (ps *PhaseSpace) setMasses(masses []float64) {
 // Accuracy: every momentum is on its mass shell to 4 x 2^-53 E^2, and the sums
 // are those of the total to 2n x 2^-52 of the largest energy.
 func (ps *PhaseSpace) Draw(s *random.Stream, total momentum.Four, m float64, out []momentum.Four) float64 {
-	w := ps.drawMasses(s, m)
+	var u [3 * MaxBodies]float64
+	n := ps.n
+	s.Uniforms(u[:3*n-4])
+	w := ps.masses(u[:n-2], m)
 	if w > 0 {
-		ps.place(s, total, m, out, nil)
+		ps.place(u[n-2:3*n-4], total, m, out, nil)
 	}
 	return w
 }
@@ -95,11 +98,20 @@ func (ps *PhaseSpace) Draw(s *random.Stream, total momentum.Four, m float64, out
 // drawMasses draws the masses of the rests for a total mass m and returns the
 // weight.
 func (ps *PhaseSpace) drawMasses(s *random.Stream, m float64) float64 {
+	var u [MaxBodies]float64
+	s.Uniforms(u[:ps.n-2])
+	return ps.masses(u[:ps.n-2], m)
+}
+
+// masses sets the masses of the rests from n-2 uniform numbers and returns the
+// weight.
+func (ps *PhaseSpace) masses(u []float64, m float64) float64 {
 	n := ps.n
 	t := m - ps.sum[n-1]
 	var r [MaxBodies]float64
-	for k := 1; k < n-1; k++ { // drawn and sorted by insertion
-		u := s.Uniform()
+	copy(r[1:], u)
+	for k := 2; k < n-1; k++ { // sorted by insertion
+		u := r[k]
 		i := k
 		for i > 1 && r[i-1] > u {
 			r[i] = r[i-1]
@@ -156,24 +168,36 @@ func (ps *PhaseSpace) ceiling(m float64) float64 {
 	return w
 }
 
-// place draws the directions and writes the four-momenta for the masses that
-// drawMasses left. Where first is given it is the direction of the last
-// particle in the total's rest frame, and no direction is drawn for that split.
-func (ps *PhaseSpace) place(s *random.Stream, total momentum.Four, m float64, out []momentum.Four, first *momentum.Three) {
+// drawPlaces draws directions and places the particles.
+func (ps *PhaseSpace) drawPlaces(s *random.Stream, total momentum.Four, m float64, out []momentum.Four, first *momentum.Three) {
+	var u [2 * MaxBodies]float64
+	splits := ps.n - 1
+	if first != nil {
+		splits--
+	}
+	s.Uniforms(u[:2*splits])
+	ps.place(u[:2*splits], total, m, out, first)
+}
+
+// place writes the four-momenta for the masses set before, in the directions
+// that two uniform numbers a split give. Where first is given it is the
+// direction of the last particle in the total's rest frame.
+func (ps *PhaseSpace) place(u []float64, total momentum.Four, m float64, out []momentum.Four, first *momentum.Three) {
+	last := ps.n - 1
 	px, py, pz, e := total.P.X, total.P.Y, total.P.Z, total.E
-	for k := ps.n - 1; k > 0; k-- {
+	for k := last; k > 0; k-- {
 		p, mass := ps.split[k], ps.mass[k]
 		var q momentum.Three
-		if k == ps.n-1 && first != nil {
+		if k == last && first != nil {
 			q = first.Scale(p)
 		} else {
-			q = isotropic(s, p)
+			q = isotropic(u[2*k-2], u[2*k-1], p)
 		}
 		// Boost of q with the energy es along the total's own motion:
-		// q + P ((P.q)/(E + M) + es)/M.
+		// q + P ((P.q)/(E + M) + es)/M, as one fraction.
 		es := math.Sqrt(float64(p*p) + float64(mass*mass))
 		along := float64(px*q.X) + float64(py*q.Y) + float64(pz*q.Z)
-		f := (along/(e+m) + es) / m
+		f := (along + float64(es*(e+m))) / ((e + m) * m)
 		x, y, z := q.X+float64(px*f), q.Y+float64(py*f), q.Z+float64(pz*f)
 		out[k] = momentum.Four{
 			P: momentum.Three{X: x, Y: y, Z: z},
@@ -193,11 +217,10 @@ func shell(x, y, z, m float64) float64 {
 	return math.Sqrt(float64(x*x) + float64(y*y) + (float64(z*z) + float64(m*m)))
 }
 
-// isotropic draws a vector of length p in a random direction, from two uniform
-// numbers: with cos theta = 2u - 1, sin theta = 2 sqrt(u (1 - u)).
-func isotropic(s *random.Stream, p float64) momentum.Three {
-	u := s.Uniform()
-	sin, cos := num.Sincos(2 * math.Pi * s.Uniform())
+// isotropic is the vector of length p in the direction that two uniform numbers
+// give: cos theta = 2u - 1, sin theta = 2 sqrt(u (1 - u)), phi = 2 pi v.
+func isotropic(u, v, p float64) momentum.Three {
+	sin, cos := num.SincosTurn(v)
 	transverse := 2 * p * math.Sqrt(u*(1-u))
 	return momentum.Three{X: transverse * cos, Y: transverse * sin, Z: p * (u - (1 - u))}
 }

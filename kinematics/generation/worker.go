@@ -250,7 +250,7 @@ func (w *worker) decay() bool {
 		direction = p.angle.direction(&w.stream, w.state.axis, w.state.momentum, ps.split[ps.n-1])
 		first = &direction
 	}
-	ps.place(&w.stream, w.state.total, w.state.m, w.points[:], first)
+	ps.drawPlaces(&w.stream, w.state.total, w.state.m, w.points[:], first)
 	w.store(p.root)
 	next := 1
 	for i := range p.nodes {
@@ -289,7 +289,7 @@ func (w *worker) decayOf(row int, g *group, ps *PhaseSpace) bool {
 		direction = around(w.helicityAxis(row), cos, math.Sqrt((1-cos)*(1+cos)), phi)
 		first = &direction
 	}
-	ps.place(&w.stream, w.momenta[row], m, w.points[:], first)
+	ps.drawPlaces(&w.stream, w.momenta[row], m, w.points[:], first)
 	w.store(g)
 	return true
 }
@@ -302,7 +302,7 @@ func (w *worker) shapedDecay(row int, g *group, ps *PhaseSpace) bool {
 		if !w.redraw(g, ps, m) {
 			return false
 		}
-		ps.place(&w.stream, momentum.Four{E: m}, m, w.points[:], nil)
+		ps.drawPlaces(&w.stream, momentum.Four{E: m}, m, w.points[:], nil)
 		w.store(g)
 		var daughters [MaxBodies]momentum.Four
 		for k, r := range g.text {

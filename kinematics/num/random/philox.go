@@ -19,14 +19,23 @@ const (
 // Philox returns the four words of Philox4x64 with ten rounds for a counter and
 // a key (the source above, section 3.3). Every counter and key is allowed.
 func Philox(counter [4]uint64, key [2]uint64) [4]uint64 {
-	c0, c1, c2, c3 := counter[0], counter[1], counter[2], counter[3]
-	k0, k1 := key[0], key[1]
-	for range 10 {
+	w0, w1, w2, w3 := rounds(counter[0], counter[1], counter[2], counter[3], key[0], key[1])
+	return [4]uint64{w0, w1, w2, w3}
+}
+
+// rounds is Philox with all words in registers.
+func rounds(c0, c1, c2, c3, k0, k1 uint64) (w0, w1, w2, w3 uint64) {
+	for range 5 { // two rounds a turn
 		hi0, lo0 := bits.Mul64(multiplier0, c0)
 		hi1, lo1 := bits.Mul64(multiplier1, c2)
-		c0, c1, c2, c3 = hi1^c1^k0, lo1, hi0^c3^k1, lo0
+		c0, c2 = hi1^c1^k0, hi0^c3^k1
+		k0 += increment0
+		k1 += increment1
+		hi2, lo2 := bits.Mul64(multiplier0, c0)
+		hi3, lo3 := bits.Mul64(multiplier1, c2)
+		c0, c1, c2, c3 = hi3^lo1^k0, lo3, hi2^lo0^k1, lo2
 		k0 += increment0
 		k1 += increment1
 	}
-	return [4]uint64{c0, c1, c2, c3}
+	return c0, c1, c2, c3
 }

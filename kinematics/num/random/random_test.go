@@ -53,6 +53,23 @@ func TestStreamIsTheCounter(t *testing.T) {
 	}
 }
 
+// Uniforms is the same sequence, whatever it is mixed with.
+func TestUniforms(t *testing.T) {
+	one, many := random.New(5, random.Generation, 3), random.New(5, random.Generation, 3)
+	for n := range 15 {
+		u := make([]float64, n)
+		many.Uniforms(u)
+		for i, got := range u {
+			if want := one.Uniform(); got != want {
+				t.Fatalf("number %d of %d is %v, want %v", i, n, got, want)
+			}
+		}
+		if one.Word() != many.Word() || one.Draws() != many.Draws() {
+			t.Fatalf("the sequences part after %d numbers", n)
+		}
+	}
+}
+
 func TestUniformStaysInside(t *testing.T) {
 	// The ends of the word's range, by the same arithmetic.
 	lowest := (float64(uint64(0)>>12) + 0.5) * (1.0 / (1 << 52))
@@ -177,6 +194,15 @@ func BenchmarkUniform(b *testing.B) {
 	for b.Loop() {
 		sink = s.Uniform()
 	}
+}
+
+func BenchmarkUniforms(b *testing.B) {
+	s := random.New(1, random.Generation, 0)
+	var u [8]float64
+	for b.Loop() {
+		s.Uniforms(u[:])
+	}
+	sink = u[7]
 }
 
 func BenchmarkNormal(b *testing.B) {

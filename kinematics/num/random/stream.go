@@ -47,7 +47,7 @@ func (s *Stream) Word() uint64 {
 }
 
 func (s *Stream) refill() {
-	s.words = Philox([4]uint64{s.block, s.event, 0, 0}, s.key)
+	s.words[0], s.words[1], s.words[2], s.words[3] = rounds(s.block, s.event, 0, 0, s.key[0], s.key[1])
 	s.block++
 	s.pending = 4
 }
@@ -57,6 +57,29 @@ func (s *Stream) refill() {
 // is ever reached. (With one bit more the largest k + 1/2 would round to 1.)
 func (s *Stream) Uniform() float64 {
 	return float64((float64(s.Word()>>12) + 0.5) * (1.0 / (1 << 52)))
+}
+
+// Uniforms fills u with what as many calls of Uniform would return, faster.
+func (s *Stream) Uniforms(u []float64) {
+	for len(u) > 0 && s.pending > 0 {
+		u[0] = s.Uniform()
+		u = u[1:]
+	}
+	for len(u) >= 4 {
+		w0, w1, w2, w3 := rounds(s.block, s.event, 0, 0, s.key[0], s.key[1])
+		s.block++
+		u[0], u[1], u[2], u[3] = fraction(w0), fraction(w1), fraction(w2), fraction(w3)
+		u = u[4:]
+	}
+	for i := range u {
+		u[i] = s.Uniform()
+	}
+}
+
+// fraction is the uniform double of a word. The conversion of a signed number is
+// one instruction, that of an unsigned one is several.
+func fraction(word uint64) float64 {
+	return (float64(int64(word>>12)) + 0.5) * (1.0 / (1 << 52)) //nolint:gosec // 52 bits
 }
 
 // Below returns a whole number k, 0 <= k < n, from one word: the high half of
