@@ -105,7 +105,10 @@ def max_lab_angle(m1, m2, m3, m4, p1):
 def t_range(m1, m2, m3, m4, s):
     p, q = rest_momentum(s, m1, m2), rest_momentum(s, m3, m4)
     gap = (m1**2 - m2**2 - m3**2 + m4**2) / (2 * mp.sqrt(s))
-    return {"t0": gap**2 - (p - q)**2, "t1": gap**2 - (p + q)**2}
+    # Exactly 0 for elastic scattering and between two massless bodies in one direction.
+    zero = (m1 == m3 and m2 == m4) or m1 == m3 == 0 or m2 == m4 == 0
+    forward = 0 if zero else gap**2 - (p - q)**2
+    return {"t0": mpf(forward), "t1": gap**2 - (p + q)**2}
 
 
 def lab_vector(m1, m2, m3, m4, p1, cos_cm):
@@ -207,17 +210,21 @@ def pair_kernel(kind, v, c):
 
 
 def pair_integral(kind, v, limit, weight, which):
-    """Integral over |c| <= limit; u = 1 - c is graded towards the forward peak."""
+    """Integral over |c| <= limit; u = 1 - c is graded towards the forward peak. The
+    integrand is divided by its value at right angles, since mp.quad stops at an
+    absolute error."""
+    scale = pair_kernel(kind, v, mpf(0))[which]
+
     def f(u):
         c = 1 - u
-        return weight(c) * pair_kernel(kind, v, c)[which]
+        return weight(c) * pair_kernel(kind, v, c)[which] / scale
     at, cuts = 1 - limit, [1 - limit]
     step = 1 / (8 * (1 + v))
     while at < 1:
         at = min(mpf(1), 1 - limit + step)
         cuts.append(at)
         step *= 4
-    return 2 * mp.quad(f, cuts)
+    return 2 * scale * mp.quad(f, cuts)
 
 
 def bw_total(y):
@@ -294,11 +301,13 @@ def pair_energy_weight(v):
 
 
 def log_integral(f, low, high, extra=()):
-    """Integral of f(v) dv over low..high in ln v, cut into short pieces."""
+    """Integral of f(v) dv over low..high in ln v, cut into short pieces, the integrand
+    divided by its largest value at a cut, since mp.quad stops at an absolute error."""
     a, b = mp.log(low), mp.log(high)
     count = int((b - a) / 4) + 1
     cuts = sorted([a + (b - a) * i / count for i in range(count + 1)] + [mp.log(x) for x in extra])
-    return mp.quad(lambda t: mp.exp(t) * f(mp.exp(t)), cuts)
+    scale = max(abs(mp.exp(t) * f(mp.exp(t))) for t in cuts)
+    return scale * mp.quad(lambda t: mp.exp(t) * f(mp.exp(t)) / scale, cuts)
 
 
 def field_black_body(E, T, m):
