@@ -64,9 +64,8 @@ func (j *judging) use(c *compiledSelection) {
 	j.compiled, j.worker = c, c.program.NewWorker(j.detail)
 }
 
-// eventsPerTurn is how many events are judged between two looks at the clock and
-// the context. Pair windows take microseconds an event, so a turn stays well below
-// the 50 ms within which cancelled work must stop.
+// eventsPerTurn is how many events are judged in one turn. Pair windows take
+// microseconds an event, so that turns are short.
 const eventsPerTurn = 64
 
 // block judges a block of a stream. Structural faults make a rejected verdict; the
@@ -83,22 +82,25 @@ func (j *judging) block(ctx context.Context, m *kinegatev1.EventBlock, bytes int
 // events judges a sound block. Events left when the deadline passes are EXPIRED;
 // the zero deadline is none.
 func (j *judging) events(ctx context.Context, sequence int64, block *event.Block, deadline time.Time) (*kinegatev1.VerdictBlock, error) {
+	late := func() bool { return !deadline.IsZero() && j.service.deps.Now().After(deadline) }
+	// One event may have many assignments, so the worker looks up within it too.
+	j.worker.Stop = func() bool { return ctx.Err() != nil || late() }
 	n := block.Events()
 	j.worker.Reset(&j.out)
-	for from := 0; from < n; from += eventsPerTurn {
-		if err := ctx.Err(); err != nil {
-			return nil, err
-		}
-		if !deadline.IsZero() && j.service.deps.Now().After(deadline) {
-			j.worker.Expire(n-from, &j.out)
+	for done := 0; done < n; {
+		if late() {
+			j.worker.Expire(n-done, &j.out)
 			break
 		}
 		release, err := j.service.turns.take(ctx)
 		if err != nil {
 			return nil, err
 		}
-		j.worker.Judge(block, from, min(from+eventsPerTurn, n), &j.out)
+		done += j.worker.Judge(block, done, min(done+eventsPerTurn, n), &j.out)
 		release()
+		if err := ctx.Err(); err != nil {
+			return nil, err
+		}
 	}
 	return verdictBlock(sequence, j.compiled.digest, &j.out), nil
 }

@@ -170,7 +170,8 @@ type Limits struct {
 	BlockEventCount int64 `protobuf:"varint,2,opt,name=block_event_count,json=blockEventCount,proto3" json:"block_event_count,omitempty"`
 	// Most object rows in a block.
 	BlockObjectCount int64 `protobuf:"varint,3,opt,name=block_object_count,json=blockObjectCount,proto3" json:"block_object_count,omitempty"`
-	// Most objects in one event; an event with more gets the status OVERSIZED.
+	// Most objects, and most beam candidates, in one event; an event with more
+	// gets the status OVERSIZED.
 	EventObjectCount int64 `protobuf:"varint,4,opt,name=event_object_count,json=eventObjectCount,proto3" json:"event_object_count,omitempty"`
 	// Largest message of the transport.
 	MessageByteCount int64 `protobuf:"varint,5,opt,name=message_byte_count,json=messageByteCount,proto3" json:"message_byte_count,omitempty"`

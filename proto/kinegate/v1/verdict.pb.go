@@ -39,7 +39,7 @@ const (
 	EventStatus_EVENT_STATUS_NEGATIVE_SPREAD EventStatus = 4
 	// Not judged: an angle, mass or degree of polarisation outside its range.
 	EventStatus_EVENT_STATUS_OUT_OF_RANGE EventStatus = 5
-	// Not judged: more objects than an event may have.
+	// Not judged: more objects, or more beam candidates, than an event may have.
 	EventStatus_EVENT_STATUS_OVERSIZED EventStatus = 6
 	// Not judged: the latency budget of the stream was used up before. The only
 	// status that may differ when the same events are judged again.

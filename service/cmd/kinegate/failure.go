@@ -30,8 +30,8 @@ func explain(err error) (text string, code int) {
 	switch s.Code() { //nolint:exhaustive // all other codes are failures of the work
 	case codes.InvalidArgument, codes.NotFound, codes.FailedPrecondition, codes.OutOfRange:
 		return describeStatus(s), exitUsage
-	case codes.Unavailable:
-		return "no server answers: " + s.Message(), exitFailed
+	case codes.Unavailable, codes.DeadlineExceeded:
+		return "no server answers in time: " + s.Message(), exitFailed
 	}
 	return describeStatus(s), exitFailed
 }
