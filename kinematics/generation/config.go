@@ -68,8 +68,8 @@ type EnergyShape struct {
 }
 
 // Angle shapes the direction of one product in the centre of mass, relative to
-// the first beam's direction there. At most one of CosTheta and SlopePerGeV2 is
-// given.
+// the first beam's direction there. At most one of CosTheta, SlopePerGeV2 and Law
+// is given.
 type Angle struct {
 	// Product is the product's place in the channel, from 0.
 	Product int
@@ -81,6 +81,8 @@ type Angle struct {
 	// t' = t - t_forward = -2 p p' (1 - cos theta), t between the first beam and
 	// the product.
 	SlopePerGeV2 float64
+	// Law is a distribution of quantum electrodynamics, for two products.
+	Law AngularLaw
 }
 
 // Region is where interactions happen: uniform along z, Gaussian across.
@@ -188,6 +190,14 @@ func (a *Angle) faults(list fault.List, field string, products int) fault.List {
 		if a.SlopePerGeV2 != 0 {
 			list = append(list, fault.Number(field+".slope_per_gev2", a.SlopePerGeV2, "0 where cos_theta is given"))
 		}
+	}
+	switch law := strconv.Itoa(int(a.Law)); {
+	case a.Law >= angularLaws:
+		list = append(list, fault.New(fault.Invalid, field+".law", law, "0 to "+strconv.Itoa(int(angularLaws)-1)))
+	case a.Law != NoLaw && (a.CosTheta != nil || a.SlopePerGeV2 != 0):
+		list = append(list, fault.New(fault.Invalid, field+".law", law, "0 where cos_theta or slope_per_gev2 is given"))
+	case a.Law != NoLaw && products != 2:
+		list = append(list, fault.New(fault.Invalid, field+".law", law, "0 for other than two products"))
 	}
 	if a.Phi != nil {
 		list = a.Phi.faults(list, field+".phi", -math.Pi, math.Pi)

@@ -17,17 +17,17 @@ const (
 )
 
 func proton() Product { return Product{Number: 2212, MassGeV: mProton} }
-func photon() Product { return Product{Number: 22} }
+func gamma() Product  { return Product{Number: 22} }
 func pion(sign int64) Product {
 	return Product{Number: 211 * sign, MassGeV: mPion}
 }
 func pi0() Product {
-	return Product{Number: 111, MassGeV: mPi0, Decay: &Decay{Products: []Product{photon(), photon()}}}
+	return Product{Number: 111, MassGeV: mPi0, Decay: &Decay{Products: []Product{gamma(), gamma()}}}
 }
 func omega() Product {
 	return Product{
 		Number: 223, MassGeV: mOmega, WidthGeV: wOmega, Shape: LineShape{L: 1},
-		Decay: &Decay{Products: []Product{pi0(), photon()}},
+		Decay: &Decay{Products: []Product{pi0(), gamma()}},
 	}
 }
 func rho() Product {

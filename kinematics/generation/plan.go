@@ -1,10 +1,6 @@
 package generation
 
 import (
-	"math"
-
-	"example.org/kinegate/kinematics/momentum"
-	"example.org/kinegate/kinematics/num"
 	"example.org/kinegate/kinematics/num/random"
 )
 
@@ -165,78 +161,4 @@ func (g *group) draw(s *random.Stream, nodes []node, m float64, masses []float64
 		ps.setMasses(drawn[:len(g.rows)])
 	}
 	return w * ps.drawMasses(s, m)
-}
-
-// angle is an Angle made ready.
-type angle struct {
-	cosTheta, phi *inverse
-	slope         float64
-}
-
-func newAngle(a *Angle) *angle {
-	made := &angle{slope: a.SlopePerGeV2}
-	if a.CosTheta != nil {
-		made.cosTheta = newInverse(a.CosTheta)
-	}
-	if a.Phi != nil {
-		made.phi = newInverse(a.Phi)
-	}
-	return made
-}
-
-// acceptance is the integral of exp(b t') over the sphere relative to an
-// isotropic distribution, (1 - exp(-2a))/(2a) with a = 2 b p p', 1 for a = 0. It
-// belongs to the weight of three and more bodies, where p' varies.
-func (a *angle) acceptance(p, pOut float64) float64 {
-	x := 4 * a.slope * p * pOut
-	if x == 0 {
-		return 1
-	}
-	return -num.Expm1(-x) / x
-}
-
-// direction draws the product's direction in the centre of mass for momenta p
-// before and pOut after, from two uniform numbers: the azimuth first.
-//
-//	1 - cos theta = -ln(1 - u (1 - exp(-2a)))/a,  a = 2 b p p'
-func (a *angle) direction(s *random.Stream, axis momentum.Three, p, pOut float64) momentum.Three {
-	u := s.Uniform()
-	phi := azimuth(u)
-	if a.phi != nil {
-		phi = a.phi.at(u)
-	}
-	u = s.Uniform()
-	var cos, versine float64
-	switch x := 2 * a.slope * p * pOut; {
-	case a.cosTheta != nil:
-		cos = a.cosTheta.at(u)
-		versine = 1 - cos
-	case x > 1e-9: // below, the exponential is flat to 2e-9
-		versine = -num.Log1p(u*num.Expm1(-2*x)) / x
-		cos = 1 - versine
-	default:
-		versine = u + u
-		cos = 1 - versine
-	}
-	return around(axis, cos, math.Sqrt(max(0, versine*(1+cos))), phi)
-}
-
-// azimuth is the angle in (-pi, pi) at the fraction u of a turn.
-func azimuth(u float64) float64 { return 2 * math.Pi * (u - 0.5) }
-
-// around is the direction at polar angle theta and azimuth phi around an axis.
-// The azimuth counts from the x axis of the frame, projected across the axis,
-// or from the y axis where the axis is x.
-func around(axis momentum.Three, cos, sin, phi float64) momentum.Three {
-	sinPhi, cosPhi := num.Sincos(phi)
-	if axis.X == 0 && axis.Y == 0 && axis.Z > 0 {
-		return momentum.Three{X: sin * cosPhi, Y: sin * sinPhi, Z: cos}
-	}
-	from := momentum.Three{X: 1}
-	if axis.X*axis.X > 0.999 {
-		from = momentum.Three{Y: 1}
-	}
-	y := axis.Cross(from).Unit()
-	x := y.Cross(axis)
-	return x.Scale(sin * cosPhi).Add(y.Scale(sin * sinPhi)).Add(axis.Scale(cos))
 }

@@ -177,7 +177,7 @@ func TestDecayDensities(t *testing.T) {
 	t.Run("muon", func(t *testing.T) {
 		c := at(0.5, Product{Number: 13, MassGeV: mMuon, Decay: &Decay{
 			Products: append([]Product{electron}, neutrinos...), Density: LeptonDecay{},
-		}}, photon())
+		}}, gamma())
 		values := sample(t, c, 40_000, func(truth *event.Truth, _, first int) float64 {
 			return restEnergy(truth, first, first+1) * 2 / mMuon
 		})
@@ -188,7 +188,7 @@ func TestDecayDensities(t *testing.T) {
 	t.Run("neutron", func(t *testing.T) {
 		c := at(1.5, Product{Number: 2112, MassGeV: mNeutron, Decay: &Decay{
 			Products: []Product{proton(), electron, {Number: -12}}, Density: BetaDecay{},
-		}}, photon())
+		}}, gamma())
 		values := sample(t, c, 40_000, func(truth *event.Truth, _, first int) float64 { return restEnergy(truth, first, first+2) })
 		// p E (E0 - E)^2 up to recoil, of the order of E/M = 1e-3.
 		end := (mNeutron*mNeutron + mElectron*mElectron - mProton*mProton) / (2 * mNeutron)
@@ -203,7 +203,7 @@ func TestDecayDensities(t *testing.T) {
 		density := DalitzPolynomial{Terms: []DalitzTerm{{1, 0, 0}, {a, 0, 1}, {b, 0, 2}}}
 		c := at(1, Product{Number: 221, MassGeV: mEta, Decay: &Decay{
 			Products: []Product{pion(1), pion(-1), pi0()}, Density: density,
-		}}, photon())
+		}}, gamma())
 		values := sample(t, c, 40_000, func(truth *event.Truth, _, first int) float64 { return restEnergy(truth, first, first+3) })
 		q := mEta - 2*mPion - mPi0
 		top := (mEta*mEta + mPi0*mPi0 - 4*mPion*mPion) / (2 * mEta)
@@ -217,7 +217,7 @@ func TestDecayDensities(t *testing.T) {
 		sharp := Product{Number: 223, MassGeV: mOmega, Decay: &Decay{
 			Products: []Product{pion(1), pion(-1), pi0()}, Density: VectorToThree{},
 		}}
-		values := sample(t, at(1.5, sharp, photon()), 40_000, func(truth *event.Truth, _, first int) float64 {
+		values := sample(t, at(1.5, sharp, gamma()), 40_000, func(truth *event.Truth, _, first int) float64 {
 			return restEnergy(truth, first, first+3)
 		})
 		// |p1 x p2|^2 at given E3 integrates over the pair's helicity angle to

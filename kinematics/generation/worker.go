@@ -247,7 +247,7 @@ func (w *worker) decay() bool {
 	var first *momentum.Three
 	var direction momentum.Three
 	if p.angle != nil {
-		direction = p.angle.direction(&w.stream, w.state.axis, w.state.momentum, ps.split[ps.n-1])
+		direction = p.angle.direction(&w.stream, &w.state, ps.split[ps.n-1])
 		first = &direction
 	}
 	ps.drawPlaces(&w.stream, w.state.total, w.state.m, w.points[:], first)
