@@ -7,6 +7,7 @@ import (
 	"testing"
 
 	"example.org/kinegate/kinematics/fault"
+	"example.org/kinegate/kinematics/momentum"
 	"example.org/kinegate/kinematics/momentum/breakup"
 )
 
@@ -226,7 +227,7 @@ func TestFlight(t *testing.T) {
 	}
 	still := must[Flight](t)(NewFlight(Parent{Mass: 1}, 1))
 	a, b := must[float64](t)(still.Surviving(0)), must[float64](t)(still.Surviving(1e-9))
-	if a != 1 || b != 0 || still.MeanLength != 0 || still.MeanLife != 1 || still.AtRestLength != LightSpeed {
+	if a != 1 || b != 0 || still.MeanLength != 0 || still.MeanLife != 1 || still.AtRestLength != momentum.LightSpeed {
 		t.Errorf("at rest: %+v, surviving %v and %v", still, a, b)
 	}
 }

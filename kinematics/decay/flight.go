@@ -4,12 +4,9 @@ import (
 	"math"
 
 	"example.org/kinegate/kinematics/fault"
+	"example.org/kinegate/kinematics/momentum"
 	"example.org/kinegate/kinematics/num"
 )
-
-// LightSpeed is the speed of light in metres per second, exact by definition of the
-// metre (Resolution 1 of the 17th General Conference on Weights and Measures, 1983).
-const LightSpeed = 299792458.0
 
 // Flight is a parent on its way.
 type Flight struct {
@@ -33,7 +30,7 @@ func NewFlight(parent Parent, meanLife float64) (Flight, error) {
 		return Flight{}, fault.Number("mean_life_s", meanLife, "> 0 and finite").In(op)
 	}
 	p, _, e := parent.Motion()
-	light := num.Prod2(LightSpeed, meanLife)
+	light := num.Prod2(momentum.LightSpeed, meanLife)
 	return Flight{
 		MeanLife:     e.MulFloat(meanLife).DivFloat(parent.Mass).Float(),
 		MeanLength:   light.Mul(p).DivFloat(parent.Mass).Float(),

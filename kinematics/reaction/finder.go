@@ -103,6 +103,14 @@ func (f *finder) find(bodies int) bool {
 	return ok
 }
 
+// step counts one set looked at; it is false when the work is too much or is stopped.
+func (f *finder) step() bool {
+	const between = 1 << 16 // far less than a millisecond
+	f.steps++
+	stop := f.channels.search.Stop
+	return f.steps <= maxSteps && (stop == nil || f.steps%between != 0 || !stop())
+}
+
 // extend adds particles from index first on until two are missing, and those by pairs.
 func (f *finder) extend(e entry, bodies, first int, missing particle.Numbers) bool {
 	left := bodies - int(e.count)
@@ -113,7 +121,7 @@ func (f *finder) extend(e entry, bodies, first int, missing particle.Numbers) bo
 		if e.mass+float64(float64(left)*f.masses[i]) > f.limit() {
 			return true
 		}
-		if f.steps++; f.steps > maxSteps {
+		if !f.step() {
 			return false
 		}
 		longer := e
@@ -133,7 +141,7 @@ func (f *finder) complete(e entry, first int, missing particle.Numbers) bool {
 		if e.mass+p.mass > f.limit() {
 			return true
 		}
-		if f.steps++; f.steps > maxSteps {
+		if !f.step() {
 			return false
 		}
 		if int(p.from) < first {

@@ -40,6 +40,9 @@ type Search struct {
 	Ignored Laws
 	// SpinAndC asks for the rules of spin, C and Bose symmetry: see allowed.
 	SpinAndC bool
+	// Stop, if it is set, is asked in between and ends the search, as does the bound on
+	// its work: the channels are then incomplete.
+	Stop func() bool
 }
 
 // Channels are the channels found, by the sum of their masses.

@@ -259,3 +259,40 @@ func BenchmarkListOpen(b *testing.B) {
 		})
 	}
 }
+
+// TestListOpenStops checks that Stop ends a search, which then says that it is incomplete.
+func TestListOpenStops(t *testing.T) {
+	tab := table(t)
+	asked := 0
+	s := search(t, tab, "gamma", "p", onTarget(10), 4)
+	s.Particles = tab.List()
+	s.Stop = func() bool {
+		asked++
+		return asked == 2
+	}
+	stopped, err := reaction.ListOpen(tab, s)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if asked != 2 || stopped.Complete || stopped.Bodies >= s.MaxBodies {
+		t.Errorf("asked %d times, %d bodies, complete %v", asked, stopped.Bodies, stopped.Complete)
+	}
+}
+
+// TestLightestMass checks the mass that stated decays allow at least.
+func TestLightestMass(t *testing.T) {
+	r := parse(t, table(t), "gamma p -> Delta(1232)+ rho0, rho0 -> pi+ pi-, Delta(1232)+ -> p pi0, pi0 -> gamma gamma")
+	mass := func(name string) float64 {
+		p, err := table(t).Named(name)
+		if err != nil {
+			t.Fatal(err)
+		}
+		return p.Mass
+	}
+	if got, want := r.LightestMass(r.Top[0]), mass("p")+mass("pi0"); got != want {
+		t.Errorf("Delta+ %v, want %v", got, want)
+	}
+	if got, want := r.LightestMass(r.Top[1]), 2*mass("pi+"); got != want {
+		t.Errorf("rho0 %v, want %v", got, want)
+	}
+}
