@@ -36,8 +36,7 @@ func other(s server.Setting, step int) string {
 func load(t *testing.T, name string, s Sources) Effective {
 	t.Helper()
 	_, all, err := Load(s)
-	var list fault.List
-	if errors.As(err, &list) {
+	if list, ok := errors.AsType[fault.List](err); ok {
 		for _, e := range list {
 			if !errors.Is(e, fault.Infeasible) && e.Field == name {
 				t.Fatal(err)
@@ -100,7 +99,7 @@ func TestFileOfTheFlagWins(t *testing.T) {
 }
 
 func TestFaultsAreAllReported(t *testing.T) {
-	text := "gate_adress: x\ncredit_blocks: many\nreflection: yes\ncredit_pool: 1MiB\nlog_level: info\nlog_level: warn\n"
+	text := "gate_addr: x\ncredit_blocks: many\nreflection: yes\ncredit_pool: 1MiB\nlog_level: info\nlog_level: warn\n"
 	_, _, err := Load(Sources{
 		Flags:    map[string]string{FileKey: "k.yaml", "no_such_flag": "1", "connections": "0"},
 		Environ:  []string{"KINEGATE_LOG_LEVEL=loud", "KINEGATE_NO_SUCH=1"},
@@ -115,7 +114,7 @@ func TestFaultsAreAllReported(t *testing.T) {
 		got[e.Field]++
 	}
 	want := map[string]int{
-		"gate_adress": 1, "credit_blocks": 1, "reflection": 1, "credit_limit": 1, "log_level": 2,
+		"gate_addr": 1, "credit_blocks": 1, "reflection": 1, "credit_limit": 1, "log_level": 2,
 		"no_such_flag": 1, "connections": 1, "no_such": 1,
 	}
 	if !maps.Equal(got, want) {

@@ -3,6 +3,7 @@ package server
 import (
 	"net"
 	"net/netip"
+	"strconv"
 	"strings"
 
 	"example.org/kinegate/kinematics/fault"
@@ -29,7 +30,7 @@ func parseAddress(text string) (address, *fault.Error) {
 	if err != nil {
 		return address{}, fault.New(fault.Invalid, "", text, addressForm)
 	}
-	if _, err := net.LookupPort("tcp", port); err != nil || port == "" {
+	if _, err := strconv.ParseUint(port, 10, 16); err != nil {
 		return address{}, fault.New(fault.Invalid, "", text, addressForm)
 	}
 	return address{"tcp", text}, nil

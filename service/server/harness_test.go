@@ -122,10 +122,10 @@ func (r *running) serve(t testing.TB) {
 	if err := r.Listen(t.Context()); err != nil {
 		t.Fatal(err)
 	}
-	go func() { r.served <- r.Serve(context.Background()) }() //nolint:usetesting // it ends by Shutdown
+	go func() { r.served <- r.Serve(context.Background()) }() // it ends by Shutdown
 	t.Cleanup(func() {
 		// A cut context: tests that care how it drains call Shutdown themselves.
-		ctx, cancel := context.WithTimeout(context.Background(), time.Second) //nolint:usetesting // the test's is over
+		ctx, cancel := context.WithTimeout(context.Background(), time.Second) // the test's is over
 		defer cancel()
 		_ = r.Shutdown(ctx)
 		if err := <-r.served; err != nil {
@@ -136,13 +136,10 @@ func (r *running) serve(t testing.TB) {
 }
 
 // dial connects to a listener in memory.
-func (r *running) dial(t testing.TB, where string, options ...grpc.DialOption) *grpc.ClientConn {
+func (r *running) dial(t testing.TB, where string) *grpc.ClientConn {
 	t.Helper()
-	options = append([]grpc.DialOption{
-		grpc.WithTransportCredentials(insecure.NewCredentials()),
-		grpc.WithContextDialer(func(ctx context.Context, _ string) (net.Conn, error) { return r.network.dial(ctx, where) }),
-	}, options...)
-	conn, err := grpc.NewClient("passthrough:memory", options...)
+	conn, err := grpc.NewClient("passthrough:memory", grpc.WithTransportCredentials(insecure.NewCredentials()),
+		grpc.WithContextDialer(func(ctx context.Context, _ string) (net.Conn, error) { return r.network.dial(ctx, where) }))
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -286,9 +283,8 @@ func rawly(ctx context.Context, conn *grpc.ClientConn, method string, messages .
 
 // faultNames are the fields of the faults in an error.
 func faultNames(err error) []string {
-	var list fault.List
 	var names []string
-	if errors.As(err, &list) {
+	if list, ok := errors.AsType[fault.List](err); ok {
 		for _, e := range list {
 			names = append(names, e.Field)
 		}

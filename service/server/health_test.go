@@ -146,12 +146,11 @@ func TestReflection(t *testing.T) {
 		if err != nil {
 			t.Fatal(err)
 		}
+		//nolint:staticcheck // deprecated, and what older clients still speak
 		_ = a.Send(&reflectionalphapb.ServerReflectionRequest{
-			MessageRequest: &reflectionalphapb.ServerReflectionRequest_FileContainingSymbol{
-				FileContainingSymbol: "kinegate.v1.ParticleService",
-			},
+			MessageRequest: &reflectionalphapb.ServerReflectionRequest_ListServices{},
 		})
-		if m, err := a.Recv(); err != nil || len(m.GetFileDescriptorResponse().GetFileDescriptorProto()) == 0 {
+		if m, err := a.Recv(); err != nil || !strings.Contains(m.String(), "kinegate.v1.ReactionService") {
 			t.Errorf("v1alpha: %v %v", m, err)
 		}
 		_ = a.CloseSend()
@@ -209,5 +208,13 @@ func TestDebugListener(t *testing.T) {
 	}
 	if code, _ := get(t, client, "/debug/pprof/"); code != 404 {
 		t.Errorf("profiles beside the metrics: %d", code)
+	}
+}
+
+func TestOwnGoroutinesAreContained(t *testing.T) {
+	r := start(t)
+	r.contained("a task", func() { panic("boom") })
+	if r.metric(t, "kinegate_panics_total") != 1 || !strings.Contains(r.log.String(), "boom") {
+		t.Errorf("log %s", r.log)
 	}
 }

@@ -34,15 +34,15 @@ const socketMode = 0o660
 // died is taken over; that of one that lives is not.
 func listenOS(ctx context.Context, network, where string) (net.Listener, error) {
 	var config net.ListenConfig
-	if network != "unix" {
-		return config.Listen(ctx, network, where)
-	}
-	if abandoned(ctx, where) {
+	if network == "unix" && abandoned(ctx, where) {
 		_ = os.Remove(where)
 	}
 	l, err := config.Listen(ctx, network, where)
 	if err != nil {
 		return nil, fmt.Errorf("listening: %w", err)
+	}
+	if network != "unix" {
+		return l, nil
 	}
 	if err := os.Chmod(where, socketMode); err != nil {
 		_ = l.Close()

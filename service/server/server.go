@@ -58,7 +58,7 @@ func New(options Options, deps Deps) (*Server, error) {
 	}
 	metrics, err := telemetry.NewMetrics(deps.Registry, deps.Version)
 	if err != nil {
-		return nil, fmt.Errorf("registering metrics: %w", err)
+		return nil, err
 	}
 	for _, c := range []prometheus.Collector{
 		collectors.NewGoCollector(), collectors.NewProcessCollector(collectors.ProcessCollectorOpts{}),
@@ -103,10 +103,10 @@ func (s *Server) build() {
 		s.fronts[Health] = f
 	}
 	if o.MetricsAddress != "" {
-		s.webs[Metrics] = metricsWeb(s.deps.Registry, s.health)
+		s.webs[Metrics] = metricsWeb(s.deps.Registry, s.health, s.deps.Log)
 	}
 	if o.DebugAddress != "" {
-		s.webs[Debug] = debugWeb()
+		s.webs[Debug] = debugWeb(s.deps.Log)
 	}
 }
 
@@ -213,7 +213,7 @@ func (s *Server) Serve(ctx context.Context) error {
 	ctx, cancel := context.WithCancel(ctx)
 	defer cancel()
 	if s.certificates != nil {
-		go s.certificates.watch(ctx)
+		go s.contained("watching certificate files", func() { s.certificates.watch(ctx) })
 	}
 	failed := make(chan error, len(s.fronts)+len(s.webs))
 	s.mu.Lock()
@@ -248,6 +248,16 @@ func (s *Server) Serve(ctx context.Context) error {
 				return err
 			}
 		}
+	}
+}
+
+// contained runs the body of a goroutine of the server's own; a panic ends it and not
+// the process.
+func (s *Server) contained(what string, body func()) {
+	err := api.Contain(func() error { body(); return nil })
+	if p, ok := errors.AsType[*api.PanicError](err); ok {
+		s.metrics.Panicked()
+		s.deps.Log.Error().Err(err).Bytes("stack", p.Stack).Msg(what)
 	}
 }
 

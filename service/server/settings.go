@@ -25,13 +25,15 @@ func (s Setting) Kind() string { return s.in(new(Options)).Type() }
 // Allowed says which values are allowed, as a range or a list.
 func (s Setting) Allowed() string { return s.in(new(Options)).Allowed() }
 
-// Ranges that several settings share.
+// Values that several settings share.
 const (
 	kibi   = Bytes(1) << 10
 	mebi   = Bytes(1) << 20
 	gibi   = Bytes(1) << 30
 	day    = 24 * time.Hour
 	minute = time.Minute
+
+	tenSeconds = "10s"
 )
 
 // Settings returns the table, in the order of its documentation.
@@ -87,7 +89,7 @@ func sizeSettings() []Setting {
 		{"header_limit", "16KiB", "Largest list of request headers.",
 			func(o *Options) Value { return size(&o.HeaderLimit, 4*kibi, mebi) }},
 		{"credit_blocks", "8", "Event blocks that a judge stream may have unanswered.",
-			func(o *Options) Value { return count(&o.CreditBlocks, 1, 1024) }},
+			func(o *Options) Value { return count(&o.CreditBlocks, 1024) }},
 		{"credit_limit", "4MiB", "Bytes of event blocks that a judge stream may have unanswered.",
 			func(o *Options) Value { return size(&o.CreditLimit, 64*kibi, gibi) }},
 		{"credit_pool", "64MiB", "Byte credit of all judge streams together; a stream that finds none left is refused.",
@@ -95,13 +97,13 @@ func sizeSettings() []Setting {
 		{"memory_limit", "0", "Memory that the process may use, for the check of the sizes above; 0 does not check.",
 			func(o *Options) Value { return size(&o.MemoryLimit, 0, 1024*gibi) }},
 		{"connections", "1024", "Most open connections on the two rpc listeners together.",
-			func(o *Options) Value { return count(&o.Connections, 1, 1<<20) }},
+			func(o *Options) Value { return count(&o.Connections, 1<<20) }},
 		{"connection_streams", "128", "Most concurrent calls of one connection; more wait in the client.",
-			func(o *Options) Value { return count(&o.ConnectionStreams, 1, 1<<16) }},
+			func(o *Options) Value { return count(&o.ConnectionStreams, 1<<16) }},
 		{"gate_streams", "64", "Most concurrent calls on the gate listener; more are refused.",
-			func(o *Options) Value { return count(&o.GateStreams, 1, 1<<20) }},
+			func(o *Options) Value { return count(&o.GateStreams, 1<<20) }},
 		{"general_streams", "512", "Most concurrent calls on the general listener; more are refused.",
-			func(o *Options) Value { return count(&o.GeneralStreams, 1, 1<<20) }},
+			func(o *Options) Value { return count(&o.GeneralStreams, 1<<20) }},
 		{"gate_stream_window", "512KiB", "Flow control of one stream on the gate listener.",
 			func(o *Options) Value { return size(&o.GateStreamWindow, 64*kibi, gibi) }},
 		{"gate_connection_window", "4MiB", "Flow control of one connection on the gate listener.",
@@ -115,13 +117,13 @@ func sizeSettings() []Setting {
 
 func timeSettings() []Setting {
 	return []Setting{
-		{"handshake_timeout", "10s", "Time for a new connection to finish its handshake.",
+		{"handshake_timeout", tenSeconds, "Time for a new connection to finish its handshake.",
 			func(o *Options) Value { return span(&o.HandshakeTimeout, time.Second, 2*minute) }},
-		{"client_ping_minimum", "10s", "Least time between the pings of a client; more often ends its connection.",
+		{"client_ping_minimum", tenSeconds, "Least time between the pings of a client; more often ends its connection.",
 			func(o *Options) Value { return span(&o.ClientPingMinimum, time.Second, 10*minute) }},
 		{"ping_interval", "20s", "Silence after which the server pings a client.",
 			func(o *Options) Value { return span(&o.PingInterval, time.Second, day) }},
-		{"ping_timeout", "10s", "Time for the answer to a ping before the connection is closed.",
+		{"ping_timeout", tenSeconds, "Time for the answer to a ping before the connection is closed.",
 			func(o *Options) Value { return span(&o.PingTimeout, time.Second, 10*minute) }},
 		{"connection_idle", "5m", "Time without a call after which a connection is closed.",
 			func(o *Options) Value { return span(&o.ConnectionIdle, time.Second, 30*day) }},
@@ -129,7 +131,7 @@ func timeSettings() []Setting {
 			func(o *Options) Value { return span(&o.ConnectionAge, time.Second, 30*day) }},
 		{"connection_age_grace", "1m", "Time after that for the calls of the connection to end.",
 			func(o *Options) Value { return span(&o.ConnectionAgeGrace, time.Second, 30*day) }},
-		{"default_deadline", "10s", "Deadline of a unary call that came without one.",
+		{"default_deadline", tenSeconds, "Deadline of a unary call that came without one.",
 			func(o *Options) Value { return span(&o.DefaultDeadline, time.Millisecond, day) }},
 		{"longest_deadline", "1m", "Longest deadline of a unary call; longer ones are cut to it.",
 			func(o *Options) Value { return span(&o.LongestDeadline, time.Millisecond, day) }},
@@ -139,7 +141,7 @@ func timeSettings() []Setting {
 			func(o *Options) Value { return span(&o.DrainNotice, 0, 10*minute) }},
 		{"drain_time", "25s", "Time after the notice for calls and streams to end.",
 			func(o *Options) Value { return span(&o.DrainTime, 0, 60*minute) }},
-		{"stop_margin", "10s", "Time after that for handlers that were cut to return and for logs to be written.",
+		{"stop_margin", tenSeconds, "Time after that for handlers that were cut to return and for logs to be written.",
 			func(o *Options) Value { return span(&o.StopMargin, 0, 10*minute) }},
 		{"termination_grace", "45s", "Time that whoever stops the process gives it; for the check of the three above.",
 			func(o *Options) Value { return span(&o.TerminationGrace, 0, 120*minute) }},

@@ -76,8 +76,9 @@ func size(at *Bytes, least, most Bytes) Value {
 	return ordered[Bytes]{at, least, most, "size", parseBytes, Bytes.String}
 }
 
-func count(at *int, least, most int) Value {
-	return ordered[int]{at, least, most, "number", func(s string) (int, bool) {
+// count is a number of at least one.
+func count(at *int, most int) Value {
+	return ordered[int]{at, 1, most, "number", func(s string) (int, bool) {
 		n, err := strconv.Atoi(s)
 		return n, err == nil
 	}, strconv.Itoa}

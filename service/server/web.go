@@ -2,12 +2,14 @@ package server
 
 import (
 	"io"
+	stdlog "log"
 	"net/http"
 	"net/http/pprof"
 	"time"
 
 	"github.com/prometheus/client_golang/prometheus"
 	"github.com/prometheus/client_golang/prometheus/promhttp"
+	"github.com/rs/zerolog"
 )
 
 // Bounds of the HTTP listeners. Profiles take as long as they are asked to, a scrape
@@ -21,7 +23,7 @@ const (
 )
 
 // metricsWeb serves metrics and the two states of health.
-func metricsWeb(registry *prometheus.Registry, h *health) *http.Server {
+func metricsWeb(registry *prometheus.Registry, h *health, log zerolog.Logger) *http.Server {
 	mux := http.NewServeMux()
 	mux.Handle("GET /metrics", promhttp.HandlerFor(registry, promhttp.HandlerOpts{
 		EnableOpenMetrics:   true,
@@ -31,24 +33,27 @@ func metricsWeb(registry *prometheus.Registry, h *health) *http.Server {
 	}))
 	mux.HandleFunc("GET /livez", func(w http.ResponseWriter, _ *http.Request) { state(w, true) })
 	mux.HandleFunc("GET /readyz", func(w http.ResponseWriter, _ *http.Request) { state(w, h.isReady()) })
-	return web(mux)
+	return web(mux, log)
 }
 
 // debugWeb serves profiles.
-func debugWeb() *http.Server {
+func debugWeb(log zerolog.Logger) *http.Server {
 	mux := http.NewServeMux()
 	mux.HandleFunc("GET /debug/pprof/", pprof.Index)
 	mux.HandleFunc("GET /debug/pprof/cmdline", pprof.Cmdline)
 	mux.HandleFunc("GET /debug/pprof/profile", pprof.Profile)
 	mux.HandleFunc("GET /debug/pprof/symbol", pprof.Symbol)
 	mux.HandleFunc("GET /debug/pprof/trace", pprof.Trace)
-	return web(mux)
+	return web(mux, log)
 }
 
-func web(handler http.Handler) *http.Server {
+// web returns an HTTP server within its bounds, which logs what it complains about as
+// all else is logged.
+func web(handler http.Handler, log zerolog.Logger) *http.Server {
 	return &http.Server{
 		Handler: handler, ReadHeaderTimeout: webHeaderTimeout, IdleTimeout: webIdleTimeout,
 		MaxHeaderBytes: webHeaderBytes,
+		ErrorLog:       stdlog.New(log, "", 0), //nolint:forbidigo // the type that net/http takes
 	}
 }
 

@@ -2,6 +2,7 @@ package server
 
 import (
 	"runtime"
+	"slices"
 	"testing"
 
 	"google.golang.org/grpc/mem"
@@ -18,8 +19,8 @@ func repeated(n int, element []byte, path ...protowire.Number) []byte {
 	for range n {
 		wire = append(wire, element...)
 	}
-	for i := len(path) - 1; i >= 0; i-- {
-		wire = protowire.AppendBytes(protowire.AppendTag(nil, path[i], protowire.BytesType), wire)
+	for _, number := range slices.Backward(path) {
+		wire = protowire.AppendBytes(protowire.AppendTag(nil, number, protowire.BytesType), wire)
 	}
 	return wire
 }

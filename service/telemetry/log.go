@@ -49,13 +49,13 @@ func NewCallLog(log zerolog.Logger, dropped func()) *CallLog {
 }
 
 // Well starts the line of a call that was answered.
-func (c *CallLog) Well() *zerolog.Event { return c.well.Info() }
+func (c *CallLog) Well() *zerolog.Event { return c.well.Info() } //nolint:zerologlint // the caller sends it
 
 // Refused starts the line of a call that its caller must change or repeat.
-func (c *CallLog) Refused() *zerolog.Event { return c.refused.Warn() }
+func (c *CallLog) Refused() *zerolog.Event { return c.refused.Warn() } //nolint:zerologlint // the caller sends it
 
 // Failed starts the line of a call that met a fault of ours.
-func (c *CallLog) Failed() *zerolog.Event { return c.failed.Error() }
+func (c *CallLog) Failed() *zerolog.Event { return c.failed.Error() } //nolint:zerologlint // the caller sends it
 
 // held is a sampler that keeps nothing and counts.
 type held func()

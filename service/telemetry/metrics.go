@@ -1,6 +1,7 @@
 package telemetry
 
 import (
+	"fmt"
 	"time"
 
 	"github.com/prometheus/client_golang/prometheus"
@@ -91,7 +92,7 @@ func NewMetrics(r prometheus.Registerer, version string) (*Metrics, error) {
 		m.connections, m.draining, m.expiry, m.reloaded, build)
 	for _, c := range all {
 		if err := r.Register(c); err != nil {
-			return nil, err
+			return nil, fmt.Errorf("registering a metric: %w", err)
 		}
 	}
 	return m, nil
@@ -134,8 +135,12 @@ func (m *Metrics) CertificatesReloaded(sound bool) {
 
 // CountDropped exports a count of lost log lines.
 func CountDropped(r prometheus.Registerer, dropped func() uint64) error {
-	return r.Register(prometheus.NewCounterFunc(prometheus.CounterOpts{
+	err := r.Register(prometheus.NewCounterFunc(prometheus.CounterOpts{
 		Name: "kinegate_log_lines_dropped_total",
 		Help: "Log lines lost because nobody took them in time, or held back as too many.",
 	}, func() float64 { return float64(dropped()) }))
+	if err != nil {
+		return fmt.Errorf("registering a metric: %w", err)
+	}
+	return nil
 }

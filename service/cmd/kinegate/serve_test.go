@@ -33,7 +33,7 @@ func TestMain(m *testing.M) {
 		_ = os.Unsetenv(asProgram)
 		main()
 	}
-	os.Exit(m.Run())
+	os.Exit(m.Run()) //nolint:forbidigo // this is the main of the tests
 }
 
 // process prepares the program as a process of its own.
@@ -43,7 +43,7 @@ func process(t *testing.T, arguments ...string) *exec.Cmd {
 	if err != nil {
 		t.Fatal(err)
 	}
-	c := exec.CommandContext(t.Context(), self, arguments...)
+	c := exec.CommandContext(t.Context(), self, arguments...) //nolint:gosec // the test binary itself
 	c.Env = append(os.Environ(), asProgram+"=1")
 	return c
 }
@@ -259,7 +259,7 @@ func TestBlockedLogPipe(t *testing.T) {
 	signals := make(chan os.Signal, 2)
 	ended := make(chan int, 1)
 	go func() {
-		ended <- run(context.Background(), program{ //nolint:usetesting // it ends by its signal
+		ended <- run(context.Background(), program{ // it ends by its signal
 			in: strings.NewReader(""), out: io.Discard, err: log, signals: signals,
 		}, onLoopback("--drain-notice", "0s"))
 	}()

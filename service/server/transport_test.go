@@ -1,0 +1,197 @@
+package server
+
+import (
+	"context"
+	"net"
+	"strings"
+	"sync"
+	"sync/atomic"
+	"testing"
+	"time"
+
+	"golang.org/x/net/http2"
+	"golang.org/x/net/http2/hpack"
+	"google.golang.org/grpc"
+	"google.golang.org/grpc/codes"
+	"google.golang.org/grpc/credentials/insecure"
+	healthpb "google.golang.org/grpc/health/grpc_health_v1"
+	"google.golang.org/grpc/metadata"
+	"google.golang.org/grpc/status"
+
+	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+	"example.org/kinegate/service/api"
+)
+
+// TestTransportRefusesBeforeUs: what gRPC itself refuses has the right code, though no
+// ErrorInfo, and reaches no handler.
+func TestTransportRefusesBeforeUs(t *testing.T) {
+	h := &hooked{answer: func(context.Context) (*kinegatev1.GetInfoResponse, error) {
+		t.Error("the handler was reached")
+		return &kinegatev1.GetInfoResponse{}, nil
+	}}
+	r, _, conn := startHooked(t, h)
+	method := kinegatev1.InfoService_GetInfo_FullMethodName
+	limit := int(r.options.MessageLimit)
+	t.Run("above twice the limit", func(t *testing.T) {
+		err := rawly(t.Context(), conn, method, make([]byte, 2*limit+1))
+		if status.Code(err) != codes.ResourceExhausted || !strings.Contains(err.Error(), "8388609 vs. 8388608") {
+			t.Errorf("got %v", err)
+		}
+	})
+	t.Run("up to twice the limit", func(t *testing.T) {
+		m := wantReason(t, rawly(t.Context(), conn, method, make([]byte, 2*limit)), api.MessageTooLarge)
+		if !strings.Contains(m["limit"], "4194304") {
+			t.Errorf("metadata %v", m)
+		}
+	})
+	t.Run("compressed", func(t *testing.T) {
+		// The deprecated option compresses without registering the compressor, which
+		// would register it for the server in this process too.
+		zipped, err := grpc.NewClient("passthrough:memory", grpc.WithTransportCredentials(insecure.NewCredentials()),
+			grpc.WithCompressor(grpc.NewGZIPCompressor()), //nolint:staticcheck // see above
+			grpc.WithContextDialer(func(ctx context.Context, _ string) (net.Conn, error) {
+				return r.network.dial(ctx, r.options.GeneralAddress)
+			}))
+		if err != nil {
+			t.Fatal(err)
+		}
+		defer func() { _ = zipped.Close() }()
+		err = rawly(t.Context(), zipped, method, make([]byte, limit))
+		if status.Code(err) != codes.Unimplemented {
+			t.Errorf("got %v", err)
+		}
+	})
+	t.Run("large headers", func(t *testing.T) {
+		ctx := metadata.AppendToOutgoingContext(t.Context(), "x-large", strings.Repeat("x", 20<<10))
+		if err := rawly(ctx, conn, method, nil); err == nil {
+			t.Error("answered")
+		}
+	})
+}
+
+// TestRawPaths sends paths that gRPC's own client would not.
+func TestRawPaths(t *testing.T) {
+	r := start(t)
+	for _, path := range []string{
+		"kinegate.v1.InfoService/GetInfo", "GetInfo", "", "/", "//", "/GetInfo", "/kinegate.v1.InfoService/GetInfo/",
+		"/kinegate.v1.InfoService/GetInfo%20", "/KINEGATE.V1.INFOSERVICE/GETINFO", "/../kinegate.v1.InfoService/GetInfo",
+	} {
+		t.Run(path, func(t *testing.T) {
+			conn, err := r.network.dial(t.Context(), r.options.GeneralAddress)
+			if err != nil {
+				t.Fatal(err)
+			}
+			defer func() { _ = conn.Close() }()
+			if got := rawCall(t, conn, path); got != "12" {
+				t.Errorf("grpc-status %q", got)
+			}
+		})
+	}
+	if n := r.metric(t, "rpc_server_calls_total", "OK"); n != 0 {
+		t.Errorf("%g calls were answered", n)
+	}
+}
+
+// rawCall sends an empty call to a path and returns its grpc-status, or what ended it.
+func rawCall(t *testing.T, conn net.Conn, path string) string {
+	t.Helper()
+	_ = conn.SetDeadline(time.Now().Add(5 * time.Second))
+	if _, err := conn.Write([]byte(http2.ClientPreface)); err != nil {
+		t.Fatal(err)
+	}
+	framer := http2.NewFramer(conn, conn)
+	framer.ReadMetaHeaders = hpack.NewDecoder(4096, nil)
+	_ = framer.WriteSettings()
+	var block strings.Builder
+	encoder := hpack.NewEncoder(&block)
+	for _, field := range [][2]string{
+		{":method", "POST"}, {":scheme", "http"}, {":path", path}, {":authority", "x"},
+		{"content-type", "application/grpc"}, {"te", "trailers"},
+	} {
+		_ = encoder.WriteField(hpack.HeaderField{Name: field[0], Value: field[1]})
+	}
+	_ = framer.WriteHeaders(http2.HeadersFrameParam{StreamID: 1, BlockFragment: []byte(block.String()), EndHeaders: true})
+	_ = framer.WriteData(1, true, []byte{0, 0, 0, 0, 0})
+	for {
+		frame, err := framer.ReadFrame()
+		if err != nil {
+			return err.Error()
+		}
+		switch f := frame.(type) {
+		case *http2.MetaHeadersFrame:
+			for _, field := range f.Fields {
+				if field.Name == "grpc-status" {
+					return field.Value
+				}
+			}
+		case *http2.RSTStreamFrame:
+			return f.ErrCode.String()
+		}
+	}
+}
+
+// TestDrainUnderLoad ends a server while clients call, watch and stall, over sockets.
+// No call that was under way is lost, and the server is gone in time.
+func TestDrainUnderLoad(t *testing.T) {
+	r := start(t, onSockets, func(o *Options, _ *Deps) {
+		o.DrainNotice, o.DrainTime, o.HandshakeTimeout = 200*time.Millisecond, 5*time.Second, time.Second
+	})
+	target := r.Addr(General).String()
+	var answered, lost atomic.Int64
+	var all sync.WaitGroup
+	ctx, cancel := context.WithCancel(t.Context())
+	defer cancel()
+	for range 4 {
+		conn, err := grpc.NewClient(target, grpc.WithTransportCredentials(insecure.NewCredentials()))
+		if err != nil {
+			t.Fatal(err)
+		}
+		defer func() { _ = conn.Close() }()
+		all.Go(func() {
+			client := kinegatev1.NewParticleServiceClient(conn)
+			for ctx.Err() == nil {
+				_, err := client.ListParticles(ctx, &kinegatev1.ListParticlesRequest{PageSize: 500})
+				switch status.Code(err) { //nolint:exhaustive // all others are losses
+				case codes.OK:
+					answered.Add(1)
+				case codes.Unavailable, codes.Canceled:
+					return // refused before any work: another replica would answer
+				default:
+					lost.Add(1)
+					t.Errorf("lost: %v", err)
+					return
+				}
+			}
+		})
+	}
+	conn, err := grpc.NewClient(target, grpc.WithTransportCredentials(insecure.NewCredentials()))
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer func() { _ = conn.Close() }()
+	for range 10 {
+		if _, err := healthpb.NewHealthClient(conn).Watch(t.Context(), &healthpb.HealthCheckRequest{}); err != nil {
+			t.Fatal(err)
+		}
+	}
+	var dialer net.Dialer
+	halfOpen, err := dialer.DialContext(t.Context(), "tcp", target)
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer func() { _ = halfOpen.Close() }()
+	eventually(t, "load", func() bool { return answered.Load() > 50 })
+	begun := time.Now()
+	if err := r.Shutdown(t.Context()); err != nil {
+		t.Errorf("Shutdown: %v", err)
+	}
+	if took := time.Since(begun); took > 6*time.Second {
+		t.Errorf("took %v", took)
+	}
+	cancel()
+	all.Wait()
+	if lost.Load() > 0 {
+		t.Errorf("%d answered, %d lost", answered.Load(), lost.Load())
+	}
+}
+
