@@ -14,11 +14,11 @@ func every(p momentum.Three) map[event.Kind]event.Coordinates {
 	pt := math.Hypot(p.X, p.Y)
 	phi := math.Atan2(p.Y, p.X)
 	columns := map[event.Kind][]float64{
-		event.EnergyMomentum: {p.X, p.Y, p.Z, math.Sqrt(size*size + 0.25)},
-		event.MomentumMass:   {p.X, p.Y, p.Z, 0.5},
+		event.EnergyMomentum:     {p.X, p.Y, p.Z, math.Sqrt(size*size + 0.25)},
+		event.MomentumMass:       {p.X, p.Y, p.Z, 0.5},
 		event.TransverseMomentum: {pt, math.Asinh(p.Z / pt), phi, 0.5},
-		event.MomentumAngles: {size, math.Atan2(pt, p.Z), phi},
-		event.MomentumSlopes: {size, p.X / p.Z, p.Y / p.Z},
+		event.MomentumAngles:     {size, math.Atan2(pt, p.Z), phi},
+		event.MomentumSlopes:     {size, p.X / p.Z, p.Y / p.Z},
 	}
 	sets := map[event.Kind]event.Coordinates{}
 	for kind, values := range columns {

@@ -113,7 +113,7 @@ func pairVersine(s *random.Stream, b float64) float64 {
 	for range MaxAttempts {
 		c := 0.0
 		if b > 0 {
-			c = num.Tanh(rapidity*(2*s.Uniform()-1)) / b
+			c = num.Tanh(2*rapidity*(s.Uniform()-0.5)) / b
 		}
 		cc := float64(c * c)
 		rest := (1 - square) * (1 - cc) / (1 - float64(square*cc))

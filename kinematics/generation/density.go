@@ -44,7 +44,7 @@ type DalitzPolynomial struct {
 const maxPower = 8
 
 func (d DalitzPolynomial) faults(list fault.List, field string, products []Product) fault.List {
-	list = bodies(list, field, products, 3)
+	list = threeBodies(list, field, products)
 	if len(d.Terms) == 0 {
 		list = append(list, fault.New(fault.Invalid, field+".terms.length", "0", ">= 1"))
 	}
@@ -132,7 +132,7 @@ func kinetic(p momentum.Four) float64 {
 type VectorToThree struct{}
 
 func (VectorToThree) faults(list fault.List, field string, products []Product) fault.List {
-	return bodies(list, field, products, 3)
+	return threeBodies(list, field, products)
 }
 func (VectorToThree) shaper([]Product) shaper { return crossProduct{} }
 
@@ -157,7 +157,7 @@ func (crossProduct) fraction(m float64, p []momentum.Four) float64 {
 type LeptonDecay struct{}
 
 func (LeptonDecay) faults(list fault.List, field string, products []Product) fault.List {
-	list = bodies(list, field, products, 3)
+	list = threeBodies(list, field, products)
 	if len(products) == 3 {
 		if _, _, ok := leptons(products); !ok {
 			list = append(list, fault.New(fault.Invalid, field, "", "an electron or muon, its own neutrino and another neutrino"))
@@ -216,7 +216,7 @@ func (d leptonDecay) fraction(m float64, p []momentum.Four) float64 {
 type BetaDecay struct{}
 
 func (BetaDecay) faults(list fault.List, field string, products []Product) fault.List {
-	list = bodies(list, field, products, 3)
+	list = threeBodies(list, field, products)
 	if len(products) == 3 {
 		if _, _, ok := leptons(products); !ok {
 			list = append(list, fault.New(fault.Invalid, field, "", "an electron or muon, its own neutrino and another particle"))
@@ -243,10 +243,10 @@ func (d betaDecay) fraction(m float64, p []momentum.Four) float64 {
 	return p[d.light].E * p[d.own].E * 4 / (most * most)
 }
 
-// bodies appends a fault unless there are n products.
-func bodies(list fault.List, field string, products []Product, n int) fault.List {
-	if len(products) != n {
-		list = append(list, fault.New(fault.Invalid, field, strconv.Itoa(len(products))+" daughters", strconv.Itoa(n)+" daughters"))
+// threeBodies appends a fault unless there are three products.
+func threeBodies(list fault.List, field string, products []Product) fault.List {
+	if len(products) != 3 {
+		list = append(list, fault.New(fault.Invalid, field, strconv.Itoa(len(products))+" daughters", "3 daughters"))
 	}
 	return list
 }

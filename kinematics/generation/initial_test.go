@@ -65,9 +65,8 @@ func TestSpectra(t *testing.T) {
 // With a given rate the event density is the flux, whatever the phase space.
 func TestConstantRateFollowsTheFlux(t *testing.T) {
 	c := etaOn(FixedTarget{Beam: Beam{Spectrum: Flat{0.5, 1.5}}, TargetMassGeV: mProton})
-	threshold := mEta + float64(mEta*mEta)/(2*mProton)
 	c.Channels[0].Products = []Product{proton(), pi0(), pi0()}
-	threshold = 2*mPi0 + float64(2*mPi0*2*mPi0)/(2*mProton)
+	threshold := 2*mPi0 + float64(2*mPi0*2*mPi0)/(2*mProton)
 	low := max(0.5, threshold)
 	energies := sample(t, c, 30_000, func(truth *event.Truth, i, _ int) float64 { return truth.BeamEnergyGeV[truth.BeamOffsets[i]] })
 	follows(t, energies, func(e float64) float64 { return (e - low) / (1.5 - low) })

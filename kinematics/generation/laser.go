@@ -40,7 +40,7 @@ func (l LaserBackscatter) Range() (low, high float64) {
 }
 
 func (l LaserBackscatter) backscatter() (photon.Backscatter, error) {
-	return photon.NewBackscatter(l.BeamGeV, l.MassGeV, l.LightGeV, l.AngleRad) //nolint:wrapcheck // faults adds the field
+	return photon.NewBackscatter(l.BeamGeV, l.MassGeV, l.LightGeV, l.AngleRad)
 }
 
 func (l LaserBackscatter) faults(field string) fault.List {

@@ -16,7 +16,8 @@ import (
 // have square-root ends, which v = sin^2(pi x/2) smooths.
 func TestChecksGeneratorMoments(t *testing.T) {
 	reference.Checks(t, "generator-moments", func(c reference.Check) (any, bool) {
-		m, masses := 1.0, []float64(nil)
+		m := 1.0
+		var masses []float64
 		if c.Has("M") {
 			m, masses = c.Float("M"), c.Floats("masses")
 		} else {

@@ -75,7 +75,6 @@ func newPlan(c *Channel) *plan {
 // group.
 func (p *plan) grow(products []Product, parent, last int) *group {
 	g := &group{sharp: true}
-	masses := make([]float64, 0, MaxBodies)
 	for i := range products {
 		product := &products[i]
 		row := len(p.nodes)
@@ -109,7 +108,6 @@ func (p *plan) grow(products []Product, parent, last int) *group {
 		}
 		g.floors += p.nodes[row].floor
 		g.nominal += product.MassGeV
-		masses = append(masses, p.nodes[row].floor)
 	}
 	g.rows = append(g.rows, g.text...)
 	g.rows[last], g.rows[len(g.rows)-1] = g.rows[len(g.rows)-1], g.rows[last]

@@ -51,9 +51,10 @@ func ProductsOf(r *reaction.Reaction, sharpBelow float64, overrides ...Override)
 		products = append(products, m.product(top))
 	}
 	var missing fault.List
-	for i, used := range m.used {
-		if !used {
-			missing = append(missing, fault.New(fault.NotFound, "overrides.product", strconv.Itoa(overrides[i].Product), "a product that decays").In("generation.ProductsOf"))
+	for i, o := range overrides {
+		if !m.used[i] {
+			f := fault.New(fault.NotFound, "overrides.product", strconv.Itoa(o.Product), "a product that decays")
+			missing = append(missing, f.In("generation.ProductsOf"))
 		}
 	}
 	return products, m.warnings, missing.Err()

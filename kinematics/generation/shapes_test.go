@@ -128,7 +128,7 @@ func TestLineShape(t *testing.T) {
 		width := func(m float64) float64 {
 			q := math.Sqrt(m*m/4 - mPion*mPion)
 			q0 := math.Sqrt(mRho*mRho/4 - mPion*mPion)
-			return wRho * mRho / m * math.Pow(q/q0, 3)
+			return wRho * mRho / m * (q / q0) * (q / q0) * (q / q0)
 		}
 		low, high := 2*mPion, min(total-mProton, mRho+DefaultReach*wRho)
 		follows(t, values, cumulated(low, high, func(m float64) float64 {
@@ -146,7 +146,7 @@ func TestTwoResonancesNearTheLimit(t *testing.T) {
 	density := func(m float64) float64 {
 		q := math.Sqrt(max(0, m*m/4-mPion*mPion))
 		q0 := math.Sqrt(mRho*mRho/4 - mPion*mPion)
-		g := mRho * wRho * mRho / m * math.Pow(q/q0, 3)
+		g := mRho * wRho * mRho / m * (q / q0) * (q / q0) * (q / q0)
 		d := m*m - mRho*mRho
 		return 2 * m * g / (d*d + g*g)
 	}

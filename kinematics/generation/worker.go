@@ -77,7 +77,7 @@ func (w *worker) event(id int64, truth *event.Truth) {
 		initial = w.write(vertex, truth)
 	}
 	truth.EventIDs = append(truth.EventIDs, id)
-	truth.Channel = append(truth.Channel, int16(channel)) //nolint:gosec // bounded by Validate
+	truth.Channel = append(truth.Channel, int16(channel))
 	truth.Weight = append(truth.Weight, weight)
 	truth.Vertex.Append(vertex[0], vertex[1], vertex[2])
 	truth.BeamEnergyGeV[beamRow] = w.state.energy

@@ -19,7 +19,7 @@ func SincosTurn(u float64) (sin, cos float64) {
 	// 4u = k + f with |f| <= 1/2: multiplying by four and removing k are exact.
 	quarters := float64(4 * u)
 	whole := math.Floor(quarters + 0.5)
-	x := (quarters - whole) * (math.Pi / 2)
+	x := float64((quarters - whole) * (math.Pi / 2))
 	k := uint64(int64(whole)) //nolint:gosec // only its last two bits count
 	s, c := math.Float64bits(sinKernel(x, 0)), math.Float64bits(cosKernel(x, 0))
 	// Odd quarters swap sine and cosine; quarters 2, 3 turn the sine's sign and

@@ -79,7 +79,7 @@ func (s *Stream) Uniforms(u []float64) {
 // fraction is the uniform double of a word. The conversion of a signed number is
 // one instruction, that of an unsigned one is several.
 func fraction(word uint64) float64 {
-	return (float64(int64(word>>12)) + 0.5) * (1.0 / (1 << 52)) //nolint:gosec // 52 bits
+	return (float64(int64(word>>12)) + 0.5) * (1.0 / (1 << 52))
 }
 
 // Below returns a whole number k, 0 <= k < n, from one word: the high half of
