@@ -14,6 +14,9 @@ type address struct {
 	network, where string
 }
 
+// unixNetwork is the network of unix sockets.
+const unixNetwork = "unix"
+
 // addressForm says how an address is written.
 const addressForm = "host:port, such as 127.0.0.1:8470 or [::1]:0, or unix:path"
 
@@ -24,7 +27,7 @@ func parseAddress(text string) (address, *fault.Error) {
 		if path == "" {
 			return address{}, fault.New(fault.Invalid, "", text, addressForm)
 		}
-		return address{"unix", path}, nil
+		return address{unixNetwork, path}, nil
 	}
 	_, port, err := net.SplitHostPort(text)
 	if err != nil {
@@ -39,7 +42,7 @@ func parseAddress(text string) (address, *fault.Error) {
 // local reports whether only this machine can reach the address. A name other than
 // localhost is not: what it resolves to can change.
 func (a address) local() bool {
-	if a.network == "unix" {
+	if a.network == unixNetwork {
 		return true
 	}
 	host, _, err := net.SplitHostPort(a.where)
@@ -55,5 +58,5 @@ func (a address) local() bool {
 
 // fixed reports whether two listeners cannot share the address.
 func (a address) fixed() bool {
-	return a.network == "unix" || !strings.HasSuffix(a.where, ":0")
+	return a.network == unixNetwork || !strings.HasSuffix(a.where, ":0")
 }

@@ -34,14 +34,14 @@ const socketMode = 0o660
 // died is taken over; that of one that lives is not.
 func listenOS(ctx context.Context, network, where string) (net.Listener, error) {
 	var config net.ListenConfig
-	if network == "unix" && abandoned(ctx, where) {
+	if network == unixNetwork && abandoned(ctx, where) {
 		_ = os.Remove(where)
 	}
 	l, err := config.Listen(ctx, network, where)
 	if err != nil {
 		return nil, fmt.Errorf("listening: %w", err)
 	}
-	if network != "unix" {
+	if network != unixNetwork {
 		return l, nil
 	}
 	if err := os.Chmod(where, socketMode); err != nil {
@@ -58,7 +58,7 @@ func abandoned(ctx context.Context, path string) bool {
 		return false
 	}
 	var dialer net.Dialer
-	conn, err := dialer.DialContext(ctx, "unix", path)
+	conn, err := dialer.DialContext(ctx, unixNetwork, path)
 	if err != nil {
 		return true
 	}
