@@ -15,11 +15,8 @@ import (
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 )
 
-// Times of the judge stream.
-const (
-	heartbeatInterval = time.Second
-	idleLimit         = 60 * time.Second
-)
+// heartbeatInterval is the silence after which a side says that it is alive.
+const heartbeatInterval = time.Second
 
 // judgeServer is the server's side of the stream.
 type judgeServer = grpc.BidiStreamingServer[kinegatev1.JudgeRequest, kinegatev1.JudgeResponse]
@@ -186,7 +183,11 @@ func (j *judgeStream) read(ctx context.Context, stop <-chan struct{}) error {
 	go func() {
 		defer close(frames)
 		for {
-			request, err := j.stream.Recv()
+			var request *kinegatev1.JudgeRequest
+			err := Contain(func() (err error) {
+				request, err = j.stream.Recv()
+				return err
+			})
 			select {
 			case frames <- frame{request, err}:
 			case <-ctx.Done():
@@ -198,6 +199,7 @@ func (j *judgeStream) read(ctx context.Context, stop <-chan struct{}) error {
 		}
 	}()
 	defer close(j.pending)
+	idleLimit := j.service.deps.StreamIdle
 	idle := time.NewTimer(idleLimit)
 	defer idle.Stop()
 	for {

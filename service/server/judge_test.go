@@ -454,3 +454,17 @@ func TestJudgeResumeGivesTheSameBits(t *testing.T) {
 		}
 	}
 }
+
+// TestJudgeIdle ends a stream that says nothing, not even a heartbeat.
+func TestJudgeIdle(t *testing.T) {
+	r := start(t, func(o *Options, _ *Deps) { o.StreamIdle = time.Second })
+	stream, _ := openJudge(t, r, &kinegatev1.JudgeOpen{Selection: inline(pairSelection())})
+	for {
+		_, err := stream.Recv()
+		if err == nil {
+			continue // heartbeats of the server
+		}
+		wantReason(t, err, api.StreamIdle)
+		return
+	}
+}
