@@ -44,7 +44,7 @@ type Absorption struct {
 // energy stay the same over the distance, with no expansion of space and no cascade.
 //
 // The y integral runs over the logarithm of y - 1 in Gauss-Legendre panels of length
-// 2 at most, see the fields. Accuracy: 1e-13 relative to the exact inputs times the
+// 2 at most, see the fields. Accuracy: 1e-14 relative to the exact inputs times the
 // condition number, which grows like m^2/(E k T) for photons far below the peak of
 // absorption on a black body. A kappa below 1e-290 per metre may be rounded to 0.
 //

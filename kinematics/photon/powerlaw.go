@@ -77,18 +77,16 @@ func (p PowerLaw) opacity(energyGeV, massGeV float64) float64 {
 	if p.PerCubicMetre == 0 {
 		return 0
 	}
-	softest, hardest := headOnExcess(energyGeV, p.MinGeV, massGeV), headOnExcess(energyGeV, p.MaxGeV, massGeV)
+	low, high := headOnRatio(energyGeV, p.MinGeV, massGeV), headOnRatio(energyGeV, p.MaxGeV, massGeV)
+	softest, hardest := low.SubFloat(1).Float(), high.SubFloat(1).Float()
 	if hardest <= 0 {
 		return 0
 	}
 	q := p.Index + 1
 	shape := func(excess float64) float64 { // (e/min)^-q G(q, ln(max/e))
 		up := num.Log1p((hardest - excess) / (1 + excess))
-		down := 1.0
-		if excess != softest {
-			down = num.Exp(-q * num.Log1p((excess-softest)/(1+softest)))
-		}
-		return down * powerIntegral(q, math.Max(0, up))
+		down := num.Log((1 + excess) / low.Float())
+		return num.Exp(-q*down) * powerIntegral(q, math.Max(0, up))
 	}
 	// F varies over v of order 1/(|q| + 1) near the threshold, or up to v2.
 	sum, from := 0.0, lowestShare*math.Min(hardest, 1/(1+math.Abs(q)))
@@ -103,7 +101,7 @@ func (p PowerLaw) opacity(energyGeV, massGeV float64) float64 {
 	return 2 * p.PerCubicMetre * (ratio * ratio) * (sum / norm)
 }
 
-// headOnExcess returns E e/m^2 - 1, rounded once.
-func headOnExcess(energy, soft, mass float64) float64 {
-	return num.Quo2(energy, mass).Mul(num.Quo2(soft, mass)).SubFloat(1).Float()
+// headOnRatio returns E e/m^2, y of a head-on collision.
+func headOnRatio(energy, soft, mass float64) num.DD {
+	return num.Quo2(energy, mass).Mul(num.Quo2(soft, mass))
 }

@@ -59,6 +59,64 @@ func TestPrecisionLaserEdge(t *testing.T) {
 	})
 }
 
+func TestPrecisionKleinNishinaMoments(t *testing.T) {
+	reference.Precision(t, "kn_moments", func(in reference.Input) (reference.Output, string) {
+		return reference.Output{
+			"transfer_over_sigmaT": photon.KleinNishinaTransfer(in.Float("k")),
+			"mean_scattered_share": photon.MeanScatteredShare(in.Float("k")),
+		}, ""
+	})
+}
+
+func TestPrecisionPairCreation(t *testing.T) {
+	reference.Precision(t, "pair_creation", func(in reference.Input) (reference.Output, string) {
+		spin := photon.Lepton
+		if in.Text("kind") == "scalar" {
+			spin = photon.Scalar
+		}
+		e := must(photon.PairEnergyFromExcess(in.Float("excess")))
+		part, cos2 := e.TotalWithin(spin, in.Float("cos_max")), e.MeanCosineSquared(spin)
+		return reference.Output{
+			"zero": part.Zero, "two": part.Two, "unpolarised": part.Unpolarised,
+			"cos2_zero": cos2.Zero, "cos2_two": cos2.Two, "cos2": cos2.Unpolarised,
+		}, ""
+	})
+}
+
+func TestPrecisionBackscatter(t *testing.T) {
+	reference.Precision(t, "backscatter", func(in reference.Input) (reference.Output, string) {
+		b := must(photon.NewBackscatter(in.Float("E_beam"), in.Float("m_beam"), in.Float("omega"), in.Float("angle")))
+		energy := in.Float("energy")
+		return reference.Output{
+			"lowest": b.Lowest(), "highest": b.Highest(),
+			"spectrum": must(b.DifferentialBarn(energy)) / photon.ClassicalRadiusSquared(in.Float("m_beam")),
+			"fraction": must(b.Fraction(0, energy)),
+		}, ""
+	})
+}
+
+func TestPrecisionFieldBlackBody(t *testing.T) {
+	reference.Precision(t, "field_black_body", func(in reference.Input) (reference.Output, string) {
+		field := photon.BlackBody{TemperatureKelvin: in.Float("T")}
+		return reference.Output{"per_metre": absorptionOverArea(field, in.Float("E"), in.Float("m"))}, ""
+	})
+}
+
+func TestPrecisionFieldPowerLaw(t *testing.T) {
+	reference.Precision(t, "field_power_law", func(in reference.Input) (reference.Output, string) {
+		field := photon.PowerLaw{
+			Index: in.Float("index"), MinGeV: in.Float("low"), MaxGeV: in.Float("high"), PerCubicMetre: 1,
+		}
+		return reference.Output{"per_metre": absorptionOverArea(field, in.Float("E"), in.Float("m"))}, ""
+	})
+}
+
+// absorptionOverArea returns the absorption per metre over pi r^2 in square metre.
+func absorptionOverArea(field photon.Field, energy, mass float64) float64 {
+	area := math.Pi * photon.ClassicalRadiusSquared(mass) * photon.SquareMetrePerBarn
+	return must(photon.Absorb(field, mass, []float64{energy}, 0))[0].PerMetre / area
+}
+
 func TestChecksKleinNishina(t *testing.T) {
 	reference.Checks(t, "klein-nishina", func(c reference.Check) (any, bool) {
 		if c.Unit == "r_e^2/sr" {

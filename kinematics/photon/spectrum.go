@@ -71,7 +71,7 @@ func (b Backscatter) bracket(share, rest float64) float64 {
 // largest scattering, so that narrow windows and the smallest x keep their digits,
 // which the differences of the logarithms in the closed form lose.
 //
-// Domain: lowGeV <= highGeV. Accuracy: 2e-14 times the condition number at the ends,
+// Domain: lowGeV <= highGeV. Accuracy: 1e-14 times the condition number at the ends,
 // head on, and for E much larger than w at every angle; 1e-12 elsewhere.
 func (b Backscatter) Fraction(lowGeV, highGeV float64) (float64, error) {
 	const op = "photon.Backscatter.Fraction"

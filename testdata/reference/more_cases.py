@@ -580,7 +580,7 @@ FUNCTIONS = {
 }
 
 # Relative bounds of answers that are no closed forms.
-ACCURACY = {"backscatter": 2e-14, "field_black_body": 1e-13, "field_power_law": 1e-13}
+ACCURACY = {"backscatter": 1e-14, "field_black_body": 1e-14, "field_power_law": 1e-14}
 
 
 # --------------------------------------------------------------- evaluation

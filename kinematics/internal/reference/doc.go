@@ -1,6 +1,7 @@
 // Package reference compares the functions of kinematics with answers made outside
 // the project: testdata/reference/precision-cases.json (50-digit answers to exact
-// double inputs) and testdata/reference/checks.json (handbook and paper values).
+// double inputs) and testdata/reference/checks.json (handbook and paper values). A
+// second set of precision cases, own-cases.json, comes from more_cases.py beside it.
 // It is imported by tests only.
 //
 // A test of one precision function:
@@ -22,5 +23,7 @@
 //	}
 //
 // Every function and class has a line in testdata/reference/ledger.csv that names
-// the test that covers it; the test of this package holds the two together.
+// the test that covers it; the test of this package holds the two together. The table
+// of what all tests of precision functions measured is testdata/reference/precision.md,
+// which TestPrecisionStatement holds to the measurement.
 package reference

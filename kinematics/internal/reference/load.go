@@ -31,7 +31,7 @@ func Root() (string, error) {
 	}
 }
 
-// precisionCase is one element of precision-cases.json.
+// precisionCase is one element of precision-cases.json or own-cases.json.
 type precisionCase struct {
 	ID    string                     `json:"id"`
 	Fn    string                     `json:"fn"`
@@ -40,6 +40,9 @@ type precisionCase struct {
 	Out   map[string]json.RawMessage `json:"out"`
 	Error string                     `json:"error"`
 	Cond  map[string]*float64        `json:"cond"`
+	// accuracy is the bound of a well-conditioned answer, from the file's meta block;
+	// flatBound where the function has none there.
+	accuracy float64
 }
 
 // quantity is a printed value with its unit and, for recomputed values, the
@@ -85,14 +88,28 @@ func load(tb testing.TB, name string, into any) {
 	}
 }
 
-// loadPrecision returns all precision cases.
+// loadPrecision returns all precision cases: those made outside the project first,
+// then those of testdata/reference/more_cases.py.
 func loadPrecision(tb testing.TB) []precisionCase {
 	tb.Helper()
-	var file struct {
-		Cases []precisionCase `json:"cases"`
+	var all []precisionCase
+	for _, name := range []string{"precision-cases.json", "own-cases.json"} {
+		var file struct {
+			Meta struct {
+				Accuracy map[string]float64 `json:"accuracy"`
+			} `json:"meta"`
+			Cases []precisionCase `json:"cases"`
+		}
+		load(tb, name, &file)
+		for _, c := range file.Cases {
+			c.accuracy = flatBound
+			if own, ok := file.Meta.Accuracy[c.Fn]; ok {
+				c.accuracy = own
+			}
+			all = append(all, c)
+		}
 	}
-	load(tb, "precision-cases.json", &file)
-	return file.Cases
+	return all
 }
 
 // loadChecks returns all checks.
