@@ -72,7 +72,8 @@ func (b Backscatter) bracket(share, rest float64) float64 {
 // which the differences of the logarithms in the closed form lose.
 //
 // Domain: lowGeV <= highGeV. Accuracy: 1e-14 times the condition number at the ends,
-// head on, and for E much larger than w at every angle; 1e-12 elsewhere.
+// at every collision angle up to x = 1e10; measured against the closed total, 3e-11 at
+// x = 1e16.
 func (b Backscatter) Fraction(lowGeV, highGeV float64) (float64, error) {
 	const op = "photon.Backscatter.Fraction"
 	if !(lowGeV <= highGeV) {
@@ -82,16 +83,20 @@ func (b Backscatter) Fraction(lowGeV, highGeV float64) (float64, error) {
 	if highGeV <= bottom || lowGeV >= top {
 		return 0, nil
 	}
-	from, fromRest, err := b.position(op, math.Max(lowGeV, bottom))
-	if err != nil {
-		return 0, err
+	// An end of the spectrum itself is exact, its rounded energy is not.
+	from, fromRest, to, toRest := 0.0, 1.0, 1.0, 0.0
+	var err error
+	if lowGeV > bottom {
+		if from, fromRest, err = b.position(op, lowGeV); err != nil {
+			return 0, err
+		}
 	}
-	to, toRest, err := b.position(op, math.Min(highGeV, top))
-	if err != nil {
-		return 0, err
+	if highGeV < top {
+		if to, toRest, err = b.position(op, highGeV); err != nil {
+			return 0, err
+		}
 	}
-	total := b.integral(0, 1, 1, 0)
-	return b.integral(from, fromRest, to, toRest) / total, nil
+	return b.integral(from, fromRest, to, toRest) / b.whole(), nil
 }
 
 // FractionWithin returns the share of the scattered photons at angles to the total
@@ -109,7 +114,15 @@ func (b Backscatter) FractionWithin(thetaRad float64) (float64, error) {
 	cosine := (1 - math.Sqrt(sine)) * (1 + math.Sqrt(sine))
 	ratio := b.lowest.Div(b.highest).Float()
 	norm := sine + float64(cosine*ratio)
-	return b.integral(cosine*ratio/norm, sine/norm, 1, 0) / b.integral(0, 1, 1, 0), nil
+	return b.integral(cosine*ratio/norm, sine/norm, 1, 0) / b.whole(), nil
+}
+
+// whole returns the integral of the bracket over the whole spectrum from the closed
+// form of the total cross-section:
+//
+//	sigma/(2 pi r^2/(1 + x)) = (4/3)(1 + x) sigma/sigma_T
+func (b Backscatter) whole() float64 {
+	return 4 * (1 + b.x) * KleinNishinaTotal(b.x/2) / 3
 }
 
 // integral integrates the bracket from h = from to h = to; the rests are 1 - h.
