@@ -23,7 +23,7 @@ var update = flag.Bool("update", false, "rewrite testdata/reference/precision.md
 //	go test ./kinematics/internal/reference -run TestPrecisionStatement -update
 func TestPrecisionStatement(t *testing.T) {
 	if testing.Short() {
-		t.Skip("runs the tests of all packages of kinematics")
+		t.Skip("runs the tests of other packages")
 	}
 	root, err := Root()
 	if err != nil {
@@ -61,7 +61,7 @@ func measureAll(t *testing.T, root string) map[string]measurement {
 		}
 	}
 	folder := t.TempDir()
-	command := exec.CommandContext(t.Context(), "go", arguments...) //nolint:gosec // packages of this module
+	command := exec.CommandContext(t.Context(), "go", arguments...)
 	command.Dir = root
 	command.Env = append(command.Environ(), reportVariable+"="+folder)
 	if output, err := command.CombinedOutput(); err != nil {
