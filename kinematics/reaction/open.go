@@ -90,6 +90,12 @@ func (c *Channels) Len() int { return len(c.entries) }
 // At returns the channel i, 0 <= i < Len.
 func (c *Channels) At(i int) OpenChannel { return c.channel(&c.entries[i]) }
 
+// Particles returns the particles of which the channels are made, by mass.
+func (c *Channels) Particles() []particle.Particle { return slices.Clone(c.list) }
+
+// Collision returns the initial state.
+func (c *Channels) Collision() Collision { return c.initial }
+
 // ListOpen returns every channel of up to MaxBodies bodies that the laws allow and the
 // energy reaches with nominal masses. Faults are of kind Invalid.
 //

@@ -18,8 +18,9 @@ import (
 
 // Bounds of one decay.
 const (
-	maxDistances = 1000
 	maxDaughters = 8
+	// maxDecayValues bounds each of the lists of values.
+	maxDecayValues = 1000
 )
 
 // decayService answers closed-form questions about decays.
@@ -33,20 +34,24 @@ type decayService struct {
 func (s *decayService) DescribeDecay(
 	_ context.Context, request *kinegatev1.DescribeDecayRequest,
 ) (*kinegatev1.DescribeDecayResponse, error) {
-	r, err := reaction.Parse(s.table, request.GetDecay())
+	process := processForm{name: "decay", text: request.GetDecay(), structured: request.GetStructuredDecay()}
+	if process.text != "" && process.structured != nil {
+		return nil, fault.New(fault.Invalid, "structured_decay", "given", "none beside decay")
+	}
+	r, err := process.read(s.table)
 	if err != nil {
-		return nil, atField("decay", Explain(err))
+		return nil, err
 	}
 	if !r.IsDecay() {
-		return nil, fault.New(fault.Invalid, "decay", request.GetDecay(), "one particle on the left").
+		return nil, fault.New(fault.Invalid, process.field(), r.String(), "one particle on the left").
 			Because("it is no decay")
 	}
-	if n := len(request.GetDistancesM()); n > maxDistances {
-		return nil, fault.New(fault.Invalid, "distances_m", strconv.Itoa(n)+" distances", "at most "+strconv.Itoa(maxDistances))
+	if err := decayLists(request); err != nil {
+		return nil, err
 	}
 	channel, err := reaction.Describe(r, reaction.InitialState{})
 	if err != nil {
-		return nil, atField("decay", Explain(err))
+		return nil, atField(process.field(), Explain(err))
 	}
 	m := &kinegatev1.DescribeDecayResponse{
 		Decay:                        r.String(),
@@ -54,6 +59,7 @@ func (s *decayService) DescribeDecay(
 		DecayClass:                   decayClassMessage(r.Decays[0].Class),
 		ReleasedEnergyGev:            r.Decays[0].Released,
 		ReleasedEnergyUncertaintyGev: releasedUncertainty(r),
+		Remarks:                      channel.Remarks,
 		TableVersion:                 s.table.Version(),
 	}
 	f := &former{}
@@ -65,86 +71,28 @@ func (s *decayService) DescribeDecay(
 	if err := f.faults.Err(); err != nil {
 		return nil, err
 	}
-	if err := describeFlight(m, r, parent, request.GetDistancesM()); err != nil {
+	if err := describeFlight(m, r, parent, request); err != nil {
 		return nil, err
 	}
-	if channel.Nominal.Excess < 0 || r.Inclusive || len(r.Top) > maxDaughters {
-		return m, nil
-	}
-	return m, describeDaughters(m, r, parent)
+	return m, describeDaughters(m, r, &channel, parent, request)
 }
 
-// describeFlight adds how the parent moves and how far it goes.
-func describeFlight(m *kinegatev1.DescribeDecayResponse, r *reaction.Reaction, parent decay.Parent, distances []float64) error {
-	motion, err := motionOfBody(parent)
-	if err != nil {
-		return In("parent", err)
-	}
-	m.Parent = &kinegatev1.ParentMotion{
-		MassGev: motion.Mass, TotalEnergyGev: motion.Total, KineticEnergyGev: motion.Kinetic,
-		MomentumGev: motion.Momentum, Beta: motion.Beta, Gamma: motion.Gamma,
-	}
-	life := r.Initial[0].Life
-	if life != particle.LifeMeanLife && life != particle.LifeWidth {
-		return distanceFaults(distances)
-	}
-	flight, err := decay.NewFlight(parent, r.Initial[0].MeanLife)
-	if err != nil {
-		return err
-	}
-	m.Parent.MeanLifeS, m.Parent.MeanFlightM = &r.Initial[0].MeanLife, &flight.MeanLength
-	if err := distanceFaults(distances); err != nil {
-		return err
-	}
-	for i, d := range distances {
-		fraction, err := flight.Surviving(d)
-		if err != nil {
-			return atField(index("distances_m", i), Explain(err))
-		}
-		m.SurvivingFractions = append(m.SurvivingFractions, fraction)
-	}
-	return nil
-}
-
-// distanceFaults reports every distance that is none.
-func distanceFaults(distances []float64) error {
-	var list fault.List
-	for i, d := range distances {
-		if !(d >= 0) {
-			list = append(list, fault.Number(index("distances_m", i), d, ">= 0"))
+// decayLists holds the lists of a request to their length.
+func decayLists(request *kinegatev1.DescribeDecayRequest) error {
+	f := &former{}
+	for _, list := range []struct {
+		field string
+		count int
+	}{
+		{"distances_m", len(request.GetDistancesM())}, {"intervals", len(request.GetIntervals())},
+		{"opening_angles_rad", len(request.GetOpeningAnglesRad())}, {"rest_frame_cosines", len(request.GetRestFrameCosines())},
+		{"laboratory_angles_rad", len(request.GetLaboratoryAnglesRad())},
+	} {
+		if list.count > maxDecayValues {
+			f.need(list.field, strconv.Itoa(list.count)+" values", "at most "+strconv.Itoa(maxDecayValues))
 		}
 	}
-	return list.Err()
-}
-
-// describeDaughters adds where the daughters can go.
-func describeDaughters(m *kinegatev1.DescribeDecayResponse, r *reaction.Reaction, parent decay.Parent) error {
-	masses := make([]float64, len(r.Top))
-	for i, number := range r.Top {
-		masses[i] = r.Products[number].Particle.Mass
-	}
-	d, err := decay.Describe(parent, masses...)
-	if err != nil {
-		return err
-	}
-	for i, number := range r.Top {
-		l := &d.Daughters[i]
-		m.Daughters = append(m.Daughters, &kinegatev1.DaughterLimits{
-			Product: r.Products[number].Name, MassGev: l.Mass,
-			RestFrameEnergy: energyRange(l.RestEnergy), RestFrameMomentum: energyRange(l.RestMomentum),
-			LaboratoryEnergy: energyRange(l.Energy), LaboratoryMomentum: energyRange(l.Momentum),
-			LaboratoryAngle: angleRange(l.Angle),
-		})
-	}
-	if len(masses) != 2 {
-		return nil
-	}
-	two, err := decay.NewTwoBody(parent, masses[0], masses[1])
-	if err != nil {
-		return err
-	}
-	m.OpeningAngle = angleRange(two.Opening())
-	return nil
+	return f.faults.Err()
 }
 
 // motionOfBody is the motion of the parent in every form.

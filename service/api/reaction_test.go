@@ -46,10 +46,10 @@ func TestDescribeReaction(t *testing.T) {
 		{"no energy", kLambda, nil, kinegatev1.ChannelState_CHANNEL_STATE_UNSPECIFIED, 0},
 		{"two photons head on", "gamma gamma -> e+ e-", beams(1.0e-3, 0.5e-3, nil), kinegatev1.ChannelState_CHANNEL_STATE_OPEN, 2},
 		{"two photons at ten degrees", "gamma gamma -> e+ e-", beams(1.0e-3, 0.5e-3, &ten), kinegatev1.ChannelState_CHANNEL_STATE_CLOSED, 0},
-		{"through width", "gamma p -> p rho0, rho0 -> pi+ pi-", onTarget(1.0), kinegatev1.ChannelState_CHANNEL_STATE_OPEN_THROUGH_WIDTH, 0},
+		{"through width", "gamma p -> p rho0, rho0 -> pi+ pi-", onTarget(1.0), kinegatev1.ChannelState_CHANNEL_STATE_OPEN_THROUGH_WIDTH, 2},
 		{"one body", "gamma gamma -> eta", beams(0.3, 0.3, nil), kinegatev1.ChannelState_CHANNEL_STATE_OFF_POINT, 0},
 		{"three bodies", "gamma p -> p pi+ pi-", onTarget(2), kinegatev1.ChannelState_CHANNEL_STATE_OPEN, 3},
-		{"inclusive", "gamma p -> K+ X", onTarget(2), kinegatev1.ChannelState_CHANNEL_STATE_OPEN, 0},
+		{"inclusive", "gamma p -> K+ X", onTarget(2), kinegatev1.ChannelState_CHANNEL_STATE_OPEN, 1},
 		{"sqrt(s)", "e+ e- -> mu+ mu-", &kinegatev1.InitialState{Kind: &kinegatev1.InitialState_SqrtSGev{SqrtSGev: 10}},
 			kinegatev1.ChannelState_CHANNEL_STATE_OPEN, 2},
 	}

@@ -26,15 +26,31 @@ const (
 // DescribeDecayRequest is a decay and the motion of the parent.
 type DescribeDecayRequest struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
-	// Decay in text, such as "Lambda -> p pi-".
+	// Decay in text, such as "Lambda -> p pi-". A comma adds the decay of a daughter,
+	// whose daughters then have limits too.
 	Decay string `protobuf:"bytes,1,opt,name=decay,proto3" json:"decay,omitempty"`
 	// Motion of the parent along +z; absent means at rest.
 	Parent *BeamMotion `protobuf:"bytes,2,opt,name=parent,proto3" json:"parent,omitempty"`
 	// Distances from the parent's origin at which the surviving fraction is
 	// wanted, each at least 0, at most 1,000 of them.
-	DistancesM    []float64 `protobuf:"fixed64,3,rep,packed,name=distances_m,json=distancesM,proto3" json:"distances_m,omitempty"`
-	unknownFields protoimpl.UnknownFields
-	sizeCache     protoimpl.SizeCache
+	DistancesM []float64 `protobuf:"fixed64,3,rep,packed,name=distances_m,json=distancesM,proto3" json:"distances_m,omitempty"`
+	// The decay in structured form, in place of the text.
+	StructuredDecay *Reaction `protobuf:"bytes,4,opt,name=structured_decay,json=structuredDecay,proto3" json:"structured_decay,omitempty"`
+	// Stretches of the flight in which the decaying fraction is wanted, at most
+	// 1,000 of them.
+	Intervals []*DistanceInterval `protobuf:"bytes,5,rep,name=intervals,proto3" json:"intervals,omitempty"`
+	// Opening angles of two photons at which density and fraction are wanted, each
+	// within [0, pi], at most 1,000 of them; only for a decay to two photons.
+	OpeningAnglesRad []float64 `protobuf:"fixed64,6,rep,packed,name=opening_angles_rad,json=openingAnglesRad,proto3" json:"opening_angles_rad,omitempty"`
+	// Directions for which both of two daughters are wanted: cosines of the angle of
+	// the first daughter from the parent's direction in its rest frame, each within
+	// [-1, 1], at most 1,000 of them; only for two daughters.
+	RestFrameCosines []float64 `protobuf:"fixed64,7,rep,packed,name=rest_frame_cosines,json=restFrameCosines,proto3" json:"rest_frame_cosines,omitempty"`
+	// The same by angles of the first daughter from the parent's direction in the
+	// laboratory, each within [0, pi], at most 1,000 of them.
+	LaboratoryAnglesRad []float64 `protobuf:"fixed64,8,rep,packed,name=laboratory_angles_rad,json=laboratoryAnglesRad,proto3" json:"laboratory_angles_rad,omitempty"`
+	unknownFields       protoimpl.UnknownFields
+	sizeCache           protoimpl.SizeCache
 }
 
 func (x *DescribeDecayRequest) Reset() {
@@ -88,6 +104,96 @@ func (x *DescribeDecayRequest) GetDistancesM() []float64 {
 	return nil
 }
 
+func (x *DescribeDecayRequest) GetStructuredDecay() *Reaction {
+	if x != nil {
+		return x.StructuredDecay
+	}
+	return nil
+}
+
+func (x *DescribeDecayRequest) GetIntervals() []*DistanceInterval {
+	if x != nil {
+		return x.Intervals
+	}
+	return nil
+}
+
+func (x *DescribeDecayRequest) GetOpeningAnglesRad() []float64 {
+	if x != nil {
+		return x.OpeningAnglesRad
+	}
+	return nil
+}
+
+func (x *DescribeDecayRequest) GetRestFrameCosines() []float64 {
+	if x != nil {
+		return x.RestFrameCosines
+	}
+	return nil
+}
+
+func (x *DescribeDecayRequest) GetLaboratoryAnglesRad() []float64 {
+	if x != nil {
+		return x.LaboratoryAnglesRad
+	}
+	return nil
+}
+
+// DistanceInterval is a stretch of the flight.
+type DistanceInterval struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// Its begin, at least 0.
+	FromM float64 `protobuf:"fixed64,1,opt,name=from_m,json=fromM,proto3" json:"from_m,omitempty"`
+	// Its end, at least from_m; absent means without end.
+	ToM           *float64 `protobuf:"fixed64,2,opt,name=to_m,json=toM,proto3,oneof" json:"to_m,omitempty"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
+}
+
+func (x *DistanceInterval) Reset() {
+	*x = DistanceInterval{}
+	mi := &file_kinegate_v1_decay_proto_msgTypes[1]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *DistanceInterval) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*DistanceInterval) ProtoMessage() {}
+
+func (x *DistanceInterval) ProtoReflect() protoreflect.Message {
+	mi := &file_kinegate_v1_decay_proto_msgTypes[1]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use DistanceInterval.ProtoReflect.Descriptor instead.
+func (*DistanceInterval) Descriptor() ([]byte, []int) {
+	return file_kinegate_v1_decay_proto_rawDescGZIP(), []int{1}
+}
+
+func (x *DistanceInterval) GetFromM() float64 {
+	if x != nil {
+		return x.FromM
+	}
+	return 0
+}
+
+func (x *DistanceInterval) GetToM() float64 {
+	if x != nil && x.ToM != nil {
+		return *x.ToM
+	}
+	return 0
+}
+
 // DescribeDecayResponse describes the decay.
 type DescribeDecayResponse struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
@@ -104,7 +210,7 @@ type DescribeDecayResponse struct {
 	ReleasedEnergyUncertaintyGev float64 `protobuf:"fixed64,5,opt,name=released_energy_uncertainty_gev,json=releasedEnergyUncertaintyGev,proto3" json:"released_energy_uncertainty_gev,omitempty"`
 	// Motion of the parent.
 	Parent *ParentMotion `protobuf:"bytes,6,opt,name=parent,proto3" json:"parent,omitempty"`
-	// The daughters in order; empty when closed.
+	// The daughters in order, two to eight; empty when closed.
 	Daughters []*DaughterLimits `protobuf:"bytes,7,rep,name=daughters,proto3" json:"daughters,omitempty"`
 	// Range of the laboratory angle between the two daughters; absent unless
 	// there are two and the decay is open.
@@ -113,14 +219,29 @@ type DescribeDecayResponse struct {
 	// order; empty where the mean life is not known.
 	SurvivingFractions []float64 `protobuf:"fixed64,9,rep,packed,name=surviving_fractions,json=survivingFractions,proto3" json:"surviving_fractions,omitempty"`
 	// Version of the particle table used.
-	TableVersion  string `protobuf:"bytes,10,opt,name=table_version,json=tableVersion,proto3" json:"table_version,omitempty"`
+	TableVersion string `protobuf:"bytes,10,opt,name=table_version,json=tableVersion,proto3" json:"table_version,omitempty"`
+	// Masses that the limits are for; unspecified where there are none.
+	LimitMasses LimitMasses `protobuf:"varint,11,opt,name=limit_masses,json=limitMasses,proto3,enum=kinegate.v1.LimitMasses" json:"limit_masses,omitempty"`
+	// Fractions of parents that decay in the stretches asked for, in their order;
+	// empty where the mean life is not known.
+	DecayingFractions []float64 `protobuf:"fixed64,12,rep,packed,name=decaying_fractions,json=decayingFractions,proto3" json:"decaying_fractions,omitempty"`
+	// The daughters of the daughters whose decays are stated, in order.
+	Granddaughters []*GranddaughterLimits `protobuf:"bytes,13,rep,name=granddaughters,proto3" json:"granddaughters,omitempty"`
+	// Densities of the opening angles asked for, in their order.
+	OpeningAngles []*OpeningAngleDensity `protobuf:"bytes,14,rep,name=opening_angles,json=openingAngles,proto3" json:"opening_angles,omitempty"`
+	// Where both daughters go for the cosines asked for, in their order.
+	RestFramePairs []*DecayPair `protobuf:"bytes,15,rep,name=rest_frame_pairs,json=restFramePairs,proto3" json:"rest_frame_pairs,omitempty"`
+	// Where both daughters go for the laboratory angles asked for, in their order.
+	LaboratorySolutions []*DecaySolution `protobuf:"bytes,16,rep,name=laboratory_solutions,json=laboratorySolutions,proto3" json:"laboratory_solutions,omitempty"`
+	// Remarks a careful reader should see.
+	Remarks       []string `protobuf:"bytes,17,rep,name=remarks,proto3" json:"remarks,omitempty"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
 }
 
 func (x *DescribeDecayResponse) Reset() {
 	*x = DescribeDecayResponse{}
-	mi := &file_kinegate_v1_decay_proto_msgTypes[1]
+	mi := &file_kinegate_v1_decay_proto_msgTypes[2]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -132,7 +253,7 @@ func (x *DescribeDecayResponse) String() string {
 func (*DescribeDecayResponse) ProtoMessage() {}
 
 func (x *DescribeDecayResponse) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_decay_proto_msgTypes[1]
+	mi := &file_kinegate_v1_decay_proto_msgTypes[2]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -145,7 +266,7 @@ func (x *DescribeDecayResponse) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use DescribeDecayResponse.ProtoReflect.Descriptor instead.
 func (*DescribeDecayResponse) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_decay_proto_rawDescGZIP(), []int{1}
+	return file_kinegate_v1_decay_proto_rawDescGZIP(), []int{2}
 }
 
 func (x *DescribeDecayResponse) GetDecay() string {
@@ -218,6 +339,55 @@ func (x *DescribeDecayResponse) GetTableVersion() string {
 	return ""
 }
 
+func (x *DescribeDecayResponse) GetLimitMasses() LimitMasses {
+	if x != nil {
+		return x.LimitMasses
+	}
+	return LimitMasses_LIMIT_MASSES_UNSPECIFIED
+}
+
+func (x *DescribeDecayResponse) GetDecayingFractions() []float64 {
+	if x != nil {
+		return x.DecayingFractions
+	}
+	return nil
+}
+
+func (x *DescribeDecayResponse) GetGranddaughters() []*GranddaughterLimits {
+	if x != nil {
+		return x.Granddaughters
+	}
+	return nil
+}
+
+func (x *DescribeDecayResponse) GetOpeningAngles() []*OpeningAngleDensity {
+	if x != nil {
+		return x.OpeningAngles
+	}
+	return nil
+}
+
+func (x *DescribeDecayResponse) GetRestFramePairs() []*DecayPair {
+	if x != nil {
+		return x.RestFramePairs
+	}
+	return nil
+}
+
+func (x *DescribeDecayResponse) GetLaboratorySolutions() []*DecaySolution {
+	if x != nil {
+		return x.LaboratorySolutions
+	}
+	return nil
+}
+
+func (x *DescribeDecayResponse) GetRemarks() []string {
+	if x != nil {
+		return x.Remarks
+	}
+	return nil
+}
+
 // ParentMotion is how the parent moves and how far it goes.
 type ParentMotion struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
@@ -243,7 +413,7 @@ type ParentMotion struct {
 
 func (x *ParentMotion) Reset() {
 	*x = ParentMotion{}
-	mi := &file_kinegate_v1_decay_proto_msgTypes[2]
+	mi := &file_kinegate_v1_decay_proto_msgTypes[3]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -255,7 +425,7 @@ func (x *ParentMotion) String() string {
 func (*ParentMotion) ProtoMessage() {}
 
 func (x *ParentMotion) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_decay_proto_msgTypes[2]
+	mi := &file_kinegate_v1_decay_proto_msgTypes[3]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -268,7 +438,7 @@ func (x *ParentMotion) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use ParentMotion.ProtoReflect.Descriptor instead.
 func (*ParentMotion) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_decay_proto_rawDescGZIP(), []int{2}
+	return file_kinegate_v1_decay_proto_rawDescGZIP(), []int{3}
 }
 
 func (x *ParentMotion) GetMassGev() float64 {
@@ -344,13 +514,19 @@ type DaughterLimits struct {
 	LaboratoryMomentum *EnergyRange `protobuf:"bytes,6,opt,name=laboratory_momentum,json=laboratoryMomentum,proto3" json:"laboratory_momentum,omitempty"`
 	// Angle from the parent's direction in the laboratory.
 	LaboratoryAngle *AngleRange `protobuf:"bytes,7,opt,name=laboratory_angle,json=laboratoryAngle,proto3" json:"laboratory_angle,omitempty"`
-	unknownFields   protoimpl.UnknownFields
-	sizeCache       protoimpl.SizeCache
+	// One of two daughters: density of its laboratory energy, constant over the
+	// range, for a parent that decays without preferred direction. Absent for more
+	// daughters and where the energy is the same in all directions.
+	LaboratoryEnergyDensityPerGev *float64 `protobuf:"fixed64,8,opt,name=laboratory_energy_density_per_gev,json=laboratoryEnergyDensityPerGev,proto3,oneof" json:"laboratory_energy_density_per_gev,omitempty"`
+	// Two momenta share every laboratory angle below the largest.
+	DoubleValued  bool `protobuf:"varint,9,opt,name=double_valued,json=doubleValued,proto3" json:"double_valued,omitempty"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
 }
 
 func (x *DaughterLimits) Reset() {
 	*x = DaughterLimits{}
-	mi := &file_kinegate_v1_decay_proto_msgTypes[3]
+	mi := &file_kinegate_v1_decay_proto_msgTypes[4]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -362,7 +538,7 @@ func (x *DaughterLimits) String() string {
 func (*DaughterLimits) ProtoMessage() {}
 
 func (x *DaughterLimits) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_decay_proto_msgTypes[3]
+	mi := &file_kinegate_v1_decay_proto_msgTypes[4]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -375,7 +551,7 @@ func (x *DaughterLimits) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use DaughterLimits.ProtoReflect.Descriptor instead.
 func (*DaughterLimits) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_decay_proto_rawDescGZIP(), []int{3}
+	return file_kinegate_v1_decay_proto_rawDescGZIP(), []int{4}
 }
 
 func (x *DaughterLimits) GetProduct() string {
@@ -427,16 +603,357 @@ func (x *DaughterLimits) GetLaboratoryAngle() *AngleRange {
 	return nil
 }
 
+func (x *DaughterLimits) GetLaboratoryEnergyDensityPerGev() float64 {
+	if x != nil && x.LaboratoryEnergyDensityPerGev != nil {
+		return *x.LaboratoryEnergyDensityPerGev
+	}
+	return 0
+}
+
+func (x *DaughterLimits) GetDoubleValued() bool {
+	if x != nil {
+		return x.DoubleValued
+	}
+	return false
+}
+
+// GranddaughterLimits is where the daughter of a daughter can go.
+type GranddaughterLimits struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// Where it can go; the rest frame is that of the first parent, and the density
+	// of the laboratory energy is not given.
+	Limits *DaughterLimits `protobuf:"bytes,1,opt,name=limits,proto3" json:"limits,omitempty"`
+	// Reference of the daughter that it comes from.
+	From string `protobuf:"bytes,2,opt,name=from,proto3" json:"from,omitempty"`
+	// Two decays to two bodies, without preferred directions: density of the energy
+	// in the rest frame of the first parent, constant over its range. Absent for
+	// more bodies and where the range is a point.
+	RestFrameEnergyDensityPerGev *float64 `protobuf:"fixed64,3,opt,name=rest_frame_energy_density_per_gev,json=restFrameEnergyDensityPerGev,proto3,oneof" json:"rest_frame_energy_density_per_gev,omitempty"`
+	unknownFields                protoimpl.UnknownFields
+	sizeCache                    protoimpl.SizeCache
+}
+
+func (x *GranddaughterLimits) Reset() {
+	*x = GranddaughterLimits{}
+	mi := &file_kinegate_v1_decay_proto_msgTypes[5]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *GranddaughterLimits) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*GranddaughterLimits) ProtoMessage() {}
+
+func (x *GranddaughterLimits) ProtoReflect() protoreflect.Message {
+	mi := &file_kinegate_v1_decay_proto_msgTypes[5]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use GranddaughterLimits.ProtoReflect.Descriptor instead.
+func (*GranddaughterLimits) Descriptor() ([]byte, []int) {
+	return file_kinegate_v1_decay_proto_rawDescGZIP(), []int{5}
+}
+
+func (x *GranddaughterLimits) GetLimits() *DaughterLimits {
+	if x != nil {
+		return x.Limits
+	}
+	return nil
+}
+
+func (x *GranddaughterLimits) GetFrom() string {
+	if x != nil {
+		return x.From
+	}
+	return ""
+}
+
+func (x *GranddaughterLimits) GetRestFrameEnergyDensityPerGev() float64 {
+	if x != nil && x.RestFrameEnergyDensityPerGev != nil {
+		return *x.RestFrameEnergyDensityPerGev
+	}
+	return 0
+}
+
+// OpeningAngleDensity is how often two photons open by an angle, for a parent that
+// decays without preferred direction.
+type OpeningAngleDensity struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// Probability per radian; 0 outside the range of the opening angle. Absent where
+	// it has no finite value: at the smallest angle, and at pi for a parent at rest.
+	DensityPerRad *float64 `protobuf:"fixed64,1,opt,name=density_per_rad,json=densityPerRad,proto3,oneof" json:"density_per_rad,omitempty"`
+	// Fraction of decays with a smaller opening angle.
+	FractionBelow float64 `protobuf:"fixed64,2,opt,name=fraction_below,json=fractionBelow,proto3" json:"fraction_below,omitempty"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
+}
+
+func (x *OpeningAngleDensity) Reset() {
+	*x = OpeningAngleDensity{}
+	mi := &file_kinegate_v1_decay_proto_msgTypes[6]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *OpeningAngleDensity) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*OpeningAngleDensity) ProtoMessage() {}
+
+func (x *OpeningAngleDensity) ProtoReflect() protoreflect.Message {
+	mi := &file_kinegate_v1_decay_proto_msgTypes[6]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use OpeningAngleDensity.ProtoReflect.Descriptor instead.
+func (*OpeningAngleDensity) Descriptor() ([]byte, []int) {
+	return file_kinegate_v1_decay_proto_rawDescGZIP(), []int{6}
+}
+
+func (x *OpeningAngleDensity) GetDensityPerRad() float64 {
+	if x != nil && x.DensityPerRad != nil {
+		return *x.DensityPerRad
+	}
+	return 0
+}
+
+func (x *OpeningAngleDensity) GetFractionBelow() float64 {
+	if x != nil {
+		return x.FractionBelow
+	}
+	return 0
+}
+
+// DecaySolution is where both daughters go for one laboratory angle.
+type DecaySolution struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// The ways, at most two, the one with the largest laboratory momentum of the first
+	// daughter first. Empty: no direction leads to the angle.
+	Pairs         []*DecayPair `protobuf:"bytes,1,rep,name=pairs,proto3" json:"pairs,omitempty"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
+}
+
+func (x *DecaySolution) Reset() {
+	*x = DecaySolution{}
+	mi := &file_kinegate_v1_decay_proto_msgTypes[7]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *DecaySolution) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*DecaySolution) ProtoMessage() {}
+
+func (x *DecaySolution) ProtoReflect() protoreflect.Message {
+	mi := &file_kinegate_v1_decay_proto_msgTypes[7]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use DecaySolution.ProtoReflect.Descriptor instead.
+func (*DecaySolution) Descriptor() ([]byte, []int) {
+	return file_kinegate_v1_decay_proto_rawDescGZIP(), []int{7}
+}
+
+func (x *DecaySolution) GetPairs() []*DecayPair {
+	if x != nil {
+		return x.Pairs
+	}
+	return nil
+}
+
+// DecayPair is one way in which two daughters go.
+type DecayPair struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// The first and the second daughter.
+	Daughters []*DecayMotion `protobuf:"bytes,1,rep,name=daughters,proto3" json:"daughters,omitempty"`
+	// Laboratory angle between them.
+	OpeningAngleRad float64 `protobuf:"fixed64,2,opt,name=opening_angle_rad,json=openingAngleRad,proto3" json:"opening_angle_rad,omitempty"`
+	unknownFields   protoimpl.UnknownFields
+	sizeCache       protoimpl.SizeCache
+}
+
+func (x *DecayPair) Reset() {
+	*x = DecayPair{}
+	mi := &file_kinegate_v1_decay_proto_msgTypes[8]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *DecayPair) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*DecayPair) ProtoMessage() {}
+
+func (x *DecayPair) ProtoReflect() protoreflect.Message {
+	mi := &file_kinegate_v1_decay_proto_msgTypes[8]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use DecayPair.ProtoReflect.Descriptor instead.
+func (*DecayPair) Descriptor() ([]byte, []int) {
+	return file_kinegate_v1_decay_proto_rawDescGZIP(), []int{8}
+}
+
+func (x *DecayPair) GetDaughters() []*DecayMotion {
+	if x != nil {
+		return x.Daughters
+	}
+	return nil
+}
+
+func (x *DecayPair) GetOpeningAngleRad() float64 {
+	if x != nil {
+		return x.OpeningAngleRad
+	}
+	return 0
+}
+
+// DecayMotion is one daughter in both frames, angles from the parent's direction.
+type DecayMotion struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// Angle in the parent's rest frame.
+	RestFrameAngleRad float64 `protobuf:"fixed64,1,opt,name=rest_frame_angle_rad,json=restFrameAngleRad,proto3" json:"rest_frame_angle_rad,omitempty"`
+	// Angle in the laboratory; pi/2 stands for that of a daughter at rest.
+	LaboratoryAngleRad float64 `protobuf:"fixed64,2,opt,name=laboratory_angle_rad,json=laboratoryAngleRad,proto3" json:"laboratory_angle_rad,omitempty"`
+	// Total energy in the laboratory.
+	LaboratoryTotalEnergyGev float64 `protobuf:"fixed64,3,opt,name=laboratory_total_energy_gev,json=laboratoryTotalEnergyGev,proto3" json:"laboratory_total_energy_gev,omitempty"`
+	// Kinetic energy in the laboratory.
+	LaboratoryKineticEnergyGev float64 `protobuf:"fixed64,4,opt,name=laboratory_kinetic_energy_gev,json=laboratoryKineticEnergyGev,proto3" json:"laboratory_kinetic_energy_gev,omitempty"`
+	// Momentum in the laboratory.
+	LaboratoryMomentumGev float64 `protobuf:"fixed64,5,opt,name=laboratory_momentum_gev,json=laboratoryMomentumGev,proto3" json:"laboratory_momentum_gev,omitempty"`
+	// Solid angle in the rest frame over that in the laboratory; absent where it has
+	// no finite value: at the largest laboratory angle.
+	RestFramePerLaboratory *float64 `protobuf:"fixed64,6,opt,name=rest_frame_per_laboratory,json=restFramePerLaboratory,proto3,oneof" json:"rest_frame_per_laboratory,omitempty"`
+	unknownFields          protoimpl.UnknownFields
+	sizeCache              protoimpl.SizeCache
+}
+
+func (x *DecayMotion) Reset() {
+	*x = DecayMotion{}
+	mi := &file_kinegate_v1_decay_proto_msgTypes[9]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *DecayMotion) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*DecayMotion) ProtoMessage() {}
+
+func (x *DecayMotion) ProtoReflect() protoreflect.Message {
+	mi := &file_kinegate_v1_decay_proto_msgTypes[9]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use DecayMotion.ProtoReflect.Descriptor instead.
+func (*DecayMotion) Descriptor() ([]byte, []int) {
+	return file_kinegate_v1_decay_proto_rawDescGZIP(), []int{9}
+}
+
+func (x *DecayMotion) GetRestFrameAngleRad() float64 {
+	if x != nil {
+		return x.RestFrameAngleRad
+	}
+	return 0
+}
+
+func (x *DecayMotion) GetLaboratoryAngleRad() float64 {
+	if x != nil {
+		return x.LaboratoryAngleRad
+	}
+	return 0
+}
+
+func (x *DecayMotion) GetLaboratoryTotalEnergyGev() float64 {
+	if x != nil {
+		return x.LaboratoryTotalEnergyGev
+	}
+	return 0
+}
+
+func (x *DecayMotion) GetLaboratoryKineticEnergyGev() float64 {
+	if x != nil {
+		return x.LaboratoryKineticEnergyGev
+	}
+	return 0
+}
+
+func (x *DecayMotion) GetLaboratoryMomentumGev() float64 {
+	if x != nil {
+		return x.LaboratoryMomentumGev
+	}
+	return 0
+}
+
+func (x *DecayMotion) GetRestFramePerLaboratory() float64 {
+	if x != nil && x.RestFramePerLaboratory != nil {
+		return *x.RestFramePerLaboratory
+	}
+	return 0
+}
+
 var File_kinegate_v1_decay_proto protoreflect.FileDescriptor
 
 const file_kinegate_v1_decay_proto_rawDesc = "" +
 	"\n" +
-	"\x17kinegate/v1/decay.proto\x12\vkinegate.v1\x1a\x1ckinegate/v1/kinematics.proto\x1a\x1akinegate/v1/reaction.proto\"~\n" +
+	"\x17kinegate/v1/decay.proto\x12\vkinegate.v1\x1a\x19kinegate/v1/channel.proto\x1a\x18kinegate/v1/dalitz.proto\x1a\x1ckinegate/v1/kinematics.proto\x1a\x1akinegate/v1/reaction.proto\"\x8d\x03\n" +
 	"\x14DescribeDecayRequest\x12\x14\n" +
 	"\x05decay\x18\x01 \x01(\tR\x05decay\x12/\n" +
 	"\x06parent\x18\x02 \x01(\v2\x17.kinegate.v1.BeamMotionR\x06parent\x12\x1f\n" +
 	"\vdistances_m\x18\x03 \x03(\x01R\n" +
-	"distancesM\"\x91\x04\n" +
+	"distancesM\x12@\n" +
+	"\x10structured_decay\x18\x04 \x01(\v2\x15.kinegate.v1.ReactionR\x0fstructuredDecay\x12;\n" +
+	"\tintervals\x18\x05 \x03(\v2\x1d.kinegate.v1.DistanceIntervalR\tintervals\x12,\n" +
+	"\x12opening_angles_rad\x18\x06 \x03(\x01R\x10openingAnglesRad\x12,\n" +
+	"\x12rest_frame_cosines\x18\a \x03(\x01R\x10restFrameCosines\x122\n" +
+	"\x15laboratory_angles_rad\x18\b \x03(\x01R\x13laboratoryAnglesRad\"J\n" +
+	"\x10DistanceInterval\x12\x15\n" +
+	"\x06from_m\x18\x01 \x01(\x01R\x05fromM\x12\x16\n" +
+	"\x04to_m\x18\x02 \x01(\x01H\x00R\x03toM\x88\x01\x01B\a\n" +
+	"\x05_to_m\"\xbb\a\n" +
 	"\x15DescribeDecayResponse\x12\x14\n" +
 	"\x05decay\x18\x01 \x01(\tR\x05decay\x12/\n" +
 	"\x05state\x18\x02 \x01(\x0e2\x19.kinegate.v1.ChannelStateR\x05state\x128\n" +
@@ -449,7 +966,14 @@ const file_kinegate_v1_decay_proto_rawDesc = "" +
 	"\ropening_angle\x18\b \x01(\v2\x17.kinegate.v1.AngleRangeR\fopeningAngle\x12/\n" +
 	"\x13surviving_fractions\x18\t \x03(\x01R\x12survivingFractions\x12#\n" +
 	"\rtable_version\x18\n" +
-	" \x01(\tR\ftableVersion\"\xbe\x02\n" +
+	" \x01(\tR\ftableVersion\x12;\n" +
+	"\flimit_masses\x18\v \x01(\x0e2\x18.kinegate.v1.LimitMassesR\vlimitMasses\x12-\n" +
+	"\x12decaying_fractions\x18\f \x03(\x01R\x11decayingFractions\x12H\n" +
+	"\x0egranddaughters\x18\r \x03(\v2 .kinegate.v1.GranddaughterLimitsR\x0egranddaughters\x12G\n" +
+	"\x0eopening_angles\x18\x0e \x03(\v2 .kinegate.v1.OpeningAngleDensityR\ropeningAngles\x12@\n" +
+	"\x10rest_frame_pairs\x18\x0f \x03(\v2\x16.kinegate.v1.DecayPairR\x0erestFramePairs\x12M\n" +
+	"\x14laboratory_solutions\x18\x10 \x03(\v2\x1a.kinegate.v1.DecaySolutionR\x13laboratorySolutions\x12\x18\n" +
+	"\aremarks\x18\x11 \x03(\tR\aremarks\"\xbe\x02\n" +
 	"\fParentMotion\x12\x19\n" +
 	"\bmass_gev\x18\x01 \x01(\x01R\amassGev\x12(\n" +
 	"\x10total_energy_gev\x18\x02 \x01(\x01R\x0etotalEnergyGev\x12,\n" +
@@ -460,7 +984,7 @@ const file_kinegate_v1_decay_proto_rawDesc = "" +
 	"\vmean_life_s\x18\a \x01(\x01H\x00R\tmeanLifeS\x88\x01\x01\x12'\n" +
 	"\rmean_flight_m\x18\b \x01(\x01H\x01R\vmeanFlightM\x88\x01\x01B\x0e\n" +
 	"\f_mean_life_sB\x10\n" +
-	"\x0e_mean_flight_m\"\xab\x03\n" +
+	"\x0e_mean_flight_m\"\xc5\x04\n" +
 	"\x0eDaughterLimits\x12\x18\n" +
 	"\aproduct\x18\x01 \x01(\tR\aproduct\x12\x19\n" +
 	"\bmass_gev\x18\x02 \x01(\x01R\amassGev\x12D\n" +
@@ -468,9 +992,35 @@ const file_kinegate_v1_decay_proto_rawDesc = "" +
 	"\x13rest_frame_momentum\x18\x04 \x01(\v2\x18.kinegate.v1.EnergyRangeR\x11restFrameMomentum\x12E\n" +
 	"\x11laboratory_energy\x18\x05 \x01(\v2\x18.kinegate.v1.EnergyRangeR\x10laboratoryEnergy\x12I\n" +
 	"\x13laboratory_momentum\x18\x06 \x01(\v2\x18.kinegate.v1.EnergyRangeR\x12laboratoryMomentum\x12B\n" +
-	"\x10laboratory_angle\x18\a \x01(\v2\x17.kinegate.v1.AngleRangeR\x0flaboratoryAngle2f\n" +
+	"\x10laboratory_angle\x18\a \x01(\v2\x17.kinegate.v1.AngleRangeR\x0flaboratoryAngle\x12M\n" +
+	"!laboratory_energy_density_per_gev\x18\b \x01(\x01H\x00R\x1dlaboratoryEnergyDensityPerGev\x88\x01\x01\x12#\n" +
+	"\rdouble_valued\x18\t \x01(\bR\fdoubleValuedB$\n" +
+	"\"_laboratory_energy_density_per_gev\"\xd2\x01\n" +
+	"\x13GranddaughterLimits\x123\n" +
+	"\x06limits\x18\x01 \x01(\v2\x1b.kinegate.v1.DaughterLimitsR\x06limits\x12\x12\n" +
+	"\x04from\x18\x02 \x01(\tR\x04from\x12L\n" +
+	"!rest_frame_energy_density_per_gev\x18\x03 \x01(\x01H\x00R\x1crestFrameEnergyDensityPerGev\x88\x01\x01B$\n" +
+	"\"_rest_frame_energy_density_per_gev\"}\n" +
+	"\x13OpeningAngleDensity\x12+\n" +
+	"\x0fdensity_per_rad\x18\x01 \x01(\x01H\x00R\rdensityPerRad\x88\x01\x01\x12%\n" +
+	"\x0efraction_below\x18\x02 \x01(\x01R\rfractionBelowB\x12\n" +
+	"\x10_density_per_rad\"=\n" +
+	"\rDecaySolution\x12,\n" +
+	"\x05pairs\x18\x01 \x03(\v2\x16.kinegate.v1.DecayPairR\x05pairs\"o\n" +
+	"\tDecayPair\x126\n" +
+	"\tdaughters\x18\x01 \x03(\v2\x18.kinegate.v1.DecayMotionR\tdaughters\x12*\n" +
+	"\x11opening_angle_rad\x18\x02 \x01(\x01R\x0fopeningAngleRad\"\x88\x03\n" +
+	"\vDecayMotion\x12/\n" +
+	"\x14rest_frame_angle_rad\x18\x01 \x01(\x01R\x11restFrameAngleRad\x120\n" +
+	"\x14laboratory_angle_rad\x18\x02 \x01(\x01R\x12laboratoryAngleRad\x12=\n" +
+	"\x1blaboratory_total_energy_gev\x18\x03 \x01(\x01R\x18laboratoryTotalEnergyGev\x12A\n" +
+	"\x1dlaboratory_kinetic_energy_gev\x18\x04 \x01(\x01R\x1alaboratoryKineticEnergyGev\x126\n" +
+	"\x17laboratory_momentum_gev\x18\x05 \x01(\x01R\x15laboratoryMomentumGev\x12>\n" +
+	"\x19rest_frame_per_laboratory\x18\x06 \x01(\x01H\x00R\x16restFramePerLaboratory\x88\x01\x01B\x1c\n" +
+	"\x1a_rest_frame_per_laboratory2\xd0\x01\n" +
 	"\fDecayService\x12V\n" +
-	"\rDescribeDecay\x12!.kinegate.v1.DescribeDecayRequest\x1a\".kinegate.v1.DescribeDecayResponseB3Z1example.org/kinegate/proto/kinegate/v1;kinegatev1b\x06proto3"
+	"\rDescribeDecay\x12!.kinegate.v1.DescribeDecayRequest\x1a\".kinegate.v1.DescribeDecayResponse\x12h\n" +
+	"\x13TraceDalitzBoundary\x12'.kinegate.v1.TraceDalitzBoundaryRequest\x1a(.kinegate.v1.TraceDalitzBoundaryResponseB3Z1example.org/kinegate/proto/kinegate/v1;kinegatev1b\x06proto3"
 
 var (
 	file_kinegate_v1_decay_proto_rawDescOnce sync.Once
@@ -484,37 +1034,59 @@ func file_kinegate_v1_decay_proto_rawDescGZIP() []byte {
 	return file_kinegate_v1_decay_proto_rawDescData
 }
 
-var file_kinegate_v1_decay_proto_msgTypes = make([]protoimpl.MessageInfo, 4)
+var file_kinegate_v1_decay_proto_msgTypes = make([]protoimpl.MessageInfo, 10)
 var file_kinegate_v1_decay_proto_goTypes = []any{
-	(*DescribeDecayRequest)(nil),  // 0: kinegate.v1.DescribeDecayRequest
-	(*DescribeDecayResponse)(nil), // 1: kinegate.v1.DescribeDecayResponse
-	(*ParentMotion)(nil),          // 2: kinegate.v1.ParentMotion
-	(*DaughterLimits)(nil),        // 3: kinegate.v1.DaughterLimits
-	(*BeamMotion)(nil),            // 4: kinegate.v1.BeamMotion
-	(ChannelState)(0),             // 5: kinegate.v1.ChannelState
-	(DecayClass)(0),               // 6: kinegate.v1.DecayClass
-	(*AngleRange)(nil),            // 7: kinegate.v1.AngleRange
-	(*EnergyRange)(nil),           // 8: kinegate.v1.EnergyRange
+	(*DescribeDecayRequest)(nil),        // 0: kinegate.v1.DescribeDecayRequest
+	(*DistanceInterval)(nil),            // 1: kinegate.v1.DistanceInterval
+	(*DescribeDecayResponse)(nil),       // 2: kinegate.v1.DescribeDecayResponse
+	(*ParentMotion)(nil),                // 3: kinegate.v1.ParentMotion
+	(*DaughterLimits)(nil),              // 4: kinegate.v1.DaughterLimits
+	(*GranddaughterLimits)(nil),         // 5: kinegate.v1.GranddaughterLimits
+	(*OpeningAngleDensity)(nil),         // 6: kinegate.v1.OpeningAngleDensity
+	(*DecaySolution)(nil),               // 7: kinegate.v1.DecaySolution
+	(*DecayPair)(nil),                   // 8: kinegate.v1.DecayPair
+	(*DecayMotion)(nil),                 // 9: kinegate.v1.DecayMotion
+	(*BeamMotion)(nil),                  // 10: kinegate.v1.BeamMotion
+	(*Reaction)(nil),                    // 11: kinegate.v1.Reaction
+	(ChannelState)(0),                   // 12: kinegate.v1.ChannelState
+	(DecayClass)(0),                     // 13: kinegate.v1.DecayClass
+	(*AngleRange)(nil),                  // 14: kinegate.v1.AngleRange
+	(LimitMasses)(0),                    // 15: kinegate.v1.LimitMasses
+	(*EnergyRange)(nil),                 // 16: kinegate.v1.EnergyRange
+	(*TraceDalitzBoundaryRequest)(nil),  // 17: kinegate.v1.TraceDalitzBoundaryRequest
+	(*TraceDalitzBoundaryResponse)(nil), // 18: kinegate.v1.TraceDalitzBoundaryResponse
 }
 var file_kinegate_v1_decay_proto_depIdxs = []int32{
-	4,  // 0: kinegate.v1.DescribeDecayRequest.parent:type_name -> kinegate.v1.BeamMotion
-	5,  // 1: kinegate.v1.DescribeDecayResponse.state:type_name -> kinegate.v1.ChannelState
-	6,  // 2: kinegate.v1.DescribeDecayResponse.decay_class:type_name -> kinegate.v1.DecayClass
-	2,  // 3: kinegate.v1.DescribeDecayResponse.parent:type_name -> kinegate.v1.ParentMotion
-	3,  // 4: kinegate.v1.DescribeDecayResponse.daughters:type_name -> kinegate.v1.DaughterLimits
-	7,  // 5: kinegate.v1.DescribeDecayResponse.opening_angle:type_name -> kinegate.v1.AngleRange
-	8,  // 6: kinegate.v1.DaughterLimits.rest_frame_energy:type_name -> kinegate.v1.EnergyRange
-	8,  // 7: kinegate.v1.DaughterLimits.rest_frame_momentum:type_name -> kinegate.v1.EnergyRange
-	8,  // 8: kinegate.v1.DaughterLimits.laboratory_energy:type_name -> kinegate.v1.EnergyRange
-	8,  // 9: kinegate.v1.DaughterLimits.laboratory_momentum:type_name -> kinegate.v1.EnergyRange
-	7,  // 10: kinegate.v1.DaughterLimits.laboratory_angle:type_name -> kinegate.v1.AngleRange
-	0,  // 11: kinegate.v1.DecayService.DescribeDecay:input_type -> kinegate.v1.DescribeDecayRequest
-	1,  // 12: kinegate.v1.DecayService.DescribeDecay:output_type -> kinegate.v1.DescribeDecayResponse
-	12, // [12:13] is the sub-list for method output_type
-	11, // [11:12] is the sub-list for method input_type
-	11, // [11:11] is the sub-list for extension type_name
-	11, // [11:11] is the sub-list for extension extendee
-	0,  // [0:11] is the sub-list for field type_name
+	10, // 0: kinegate.v1.DescribeDecayRequest.parent:type_name -> kinegate.v1.BeamMotion
+	11, // 1: kinegate.v1.DescribeDecayRequest.structured_decay:type_name -> kinegate.v1.Reaction
+	1,  // 2: kinegate.v1.DescribeDecayRequest.intervals:type_name -> kinegate.v1.DistanceInterval
+	12, // 3: kinegate.v1.DescribeDecayResponse.state:type_name -> kinegate.v1.ChannelState
+	13, // 4: kinegate.v1.DescribeDecayResponse.decay_class:type_name -> kinegate.v1.DecayClass
+	3,  // 5: kinegate.v1.DescribeDecayResponse.parent:type_name -> kinegate.v1.ParentMotion
+	4,  // 6: kinegate.v1.DescribeDecayResponse.daughters:type_name -> kinegate.v1.DaughterLimits
+	14, // 7: kinegate.v1.DescribeDecayResponse.opening_angle:type_name -> kinegate.v1.AngleRange
+	15, // 8: kinegate.v1.DescribeDecayResponse.limit_masses:type_name -> kinegate.v1.LimitMasses
+	5,  // 9: kinegate.v1.DescribeDecayResponse.granddaughters:type_name -> kinegate.v1.GranddaughterLimits
+	6,  // 10: kinegate.v1.DescribeDecayResponse.opening_angles:type_name -> kinegate.v1.OpeningAngleDensity
+	8,  // 11: kinegate.v1.DescribeDecayResponse.rest_frame_pairs:type_name -> kinegate.v1.DecayPair
+	7,  // 12: kinegate.v1.DescribeDecayResponse.laboratory_solutions:type_name -> kinegate.v1.DecaySolution
+	16, // 13: kinegate.v1.DaughterLimits.rest_frame_energy:type_name -> kinegate.v1.EnergyRange
+	16, // 14: kinegate.v1.DaughterLimits.rest_frame_momentum:type_name -> kinegate.v1.EnergyRange
+	16, // 15: kinegate.v1.DaughterLimits.laboratory_energy:type_name -> kinegate.v1.EnergyRange
+	16, // 16: kinegate.v1.DaughterLimits.laboratory_momentum:type_name -> kinegate.v1.EnergyRange
+	14, // 17: kinegate.v1.DaughterLimits.laboratory_angle:type_name -> kinegate.v1.AngleRange
+	4,  // 18: kinegate.v1.GranddaughterLimits.limits:type_name -> kinegate.v1.DaughterLimits
+	8,  // 19: kinegate.v1.DecaySolution.pairs:type_name -> kinegate.v1.DecayPair
+	9,  // 20: kinegate.v1.DecayPair.daughters:type_name -> kinegate.v1.DecayMotion
+	0,  // 21: kinegate.v1.DecayService.DescribeDecay:input_type -> kinegate.v1.DescribeDecayRequest
+	17, // 22: kinegate.v1.DecayService.TraceDalitzBoundary:input_type -> kinegate.v1.TraceDalitzBoundaryRequest
+	2,  // 23: kinegate.v1.DecayService.DescribeDecay:output_type -> kinegate.v1.DescribeDecayResponse
+	18, // 24: kinegate.v1.DecayService.TraceDalitzBoundary:output_type -> kinegate.v1.TraceDalitzBoundaryResponse
+	23, // [23:25] is the sub-list for method output_type
+	21, // [21:23] is the sub-list for method input_type
+	21, // [21:21] is the sub-list for extension type_name
+	21, // [21:21] is the sub-list for extension extendee
+	0,  // [0:21] is the sub-list for field type_name
 }
 
 func init() { file_kinegate_v1_decay_proto_init() }
@@ -522,16 +1094,23 @@ func file_kinegate_v1_decay_proto_init() {
 	if File_kinegate_v1_decay_proto != nil {
 		return
 	}
+	file_kinegate_v1_channel_proto_init()
+	file_kinegate_v1_dalitz_proto_init()
 	file_kinegate_v1_kinematics_proto_init()
 	file_kinegate_v1_reaction_proto_init()
-	file_kinegate_v1_decay_proto_msgTypes[2].OneofWrappers = []any{}
+	file_kinegate_v1_decay_proto_msgTypes[1].OneofWrappers = []any{}
+	file_kinegate_v1_decay_proto_msgTypes[3].OneofWrappers = []any{}
+	file_kinegate_v1_decay_proto_msgTypes[4].OneofWrappers = []any{}
+	file_kinegate_v1_decay_proto_msgTypes[5].OneofWrappers = []any{}
+	file_kinegate_v1_decay_proto_msgTypes[6].OneofWrappers = []any{}
+	file_kinegate_v1_decay_proto_msgTypes[9].OneofWrappers = []any{}
 	type x struct{}
 	out := protoimpl.TypeBuilder{
 		File: protoimpl.DescBuilder{
 			GoPackagePath: reflect.TypeOf(x{}).PkgPath(),
 			RawDescriptor: unsafe.Slice(unsafe.StringData(file_kinegate_v1_decay_proto_rawDesc), len(file_kinegate_v1_decay_proto_rawDesc)),
 			NumEnums:      0,
-			NumMessages:   4,
+			NumMessages:   10,
 			NumExtensions: 0,
 			NumServices:   1,
 		},

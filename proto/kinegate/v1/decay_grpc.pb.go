@@ -21,7 +21,8 @@ import (
 const _ = grpc.SupportPackageIsVersion9
 
 const (
-	DecayService_DescribeDecay_FullMethodName = "/kinegate.v1.DecayService/DescribeDecay"
+	DecayService_DescribeDecay_FullMethodName       = "/kinegate.v1.DecayService/DescribeDecay"
+	DecayService_TraceDalitzBoundary_FullMethodName = "/kinegate.v1.DecayService/TraceDalitzBoundary"
 )
 
 // DecayServiceClient is the client API for DecayService service.
@@ -33,6 +34,11 @@ type DecayServiceClient interface {
 	// DescribeDecay says what energy a decay releases and where its daughters
 	// go, at rest and in flight. A closed decay is an answer, not an error.
 	DescribeDecay(ctx context.Context, in *DescribeDecayRequest, opts ...grpc.CallOption) (*DescribeDecayResponse, error)
+	// TraceDalitzBoundary gives the closed boundary of the region that three bodies
+	// reach in the masses of their pairs, for a decay or for a reaction at one or
+	// several energies, and bands of it. A closed channel is an answer, not an
+	// error; boundaries of more than 100,000 points together are REPLY_TOO_LARGE.
+	TraceDalitzBoundary(ctx context.Context, in *TraceDalitzBoundaryRequest, opts ...grpc.CallOption) (*TraceDalitzBoundaryResponse, error)
 }
 
 type decayServiceClient struct {
@@ -53,6 +59,16 @@ func (c *decayServiceClient) DescribeDecay(ctx context.Context, in *DescribeDeca
 	return out, nil
 }
 
+func (c *decayServiceClient) TraceDalitzBoundary(ctx context.Context, in *TraceDalitzBoundaryRequest, opts ...grpc.CallOption) (*TraceDalitzBoundaryResponse, error) {
+	cOpts := append([]grpc.CallOption{grpc.StaticMethod()}, opts...)
+	out := new(TraceDalitzBoundaryResponse)
+	err := c.cc.Invoke(ctx, DecayService_TraceDalitzBoundary_FullMethodName, in, out, cOpts...)
+	if err != nil {
+		return nil, err
+	}
+	return out, nil
+}
+
 // DecayServiceServer is the server API for DecayService service.
 // All implementations must embed UnimplementedDecayServiceServer
 // for forward compatibility.
@@ -62,6 +78,11 @@ type DecayServiceServer interface {
 	// DescribeDecay says what energy a decay releases and where its daughters
 	// go, at rest and in flight. A closed decay is an answer, not an error.
 	DescribeDecay(context.Context, *DescribeDecayRequest) (*DescribeDecayResponse, error)
+	// TraceDalitzBoundary gives the closed boundary of the region that three bodies
+	// reach in the masses of their pairs, for a decay or for a reaction at one or
+	// several energies, and bands of it. A closed channel is an answer, not an
+	// error; boundaries of more than 100,000 points together are REPLY_TOO_LARGE.
+	TraceDalitzBoundary(context.Context, *TraceDalitzBoundaryRequest) (*TraceDalitzBoundaryResponse, error)
 	mustEmbedUnimplementedDecayServiceServer()
 }
 
@@ -74,6 +95,9 @@ type UnimplementedDecayServiceServer struct{}
 
 func (UnimplementedDecayServiceServer) DescribeDecay(context.Context, *DescribeDecayRequest) (*DescribeDecayResponse, error) {
 	return nil, status.Error(codes.Unimplemented, "method DescribeDecay not implemented")
+}
+func (UnimplementedDecayServiceServer) TraceDalitzBoundary(context.Context, *TraceDalitzBoundaryRequest) (*TraceDalitzBoundaryResponse, error) {
+	return nil, status.Error(codes.Unimplemented, "method TraceDalitzBoundary not implemented")
 }
 func (UnimplementedDecayServiceServer) mustEmbedUnimplementedDecayServiceServer() {}
 func (UnimplementedDecayServiceServer) testEmbeddedByValue()                      {}
@@ -114,6 +138,24 @@ func _DecayService_DescribeDecay_Handler(srv interface{}, ctx context.Context, d
 	return interceptor(ctx, in, info, handler)
 }
 
+func _DecayService_TraceDalitzBoundary_Handler(srv interface{}, ctx context.Context, dec func(interface{}) error, interceptor grpc.UnaryServerInterceptor) (interface{}, error) {
+	in := new(TraceDalitzBoundaryRequest)
+	if err := dec(in); err != nil {
+		return nil, err
+	}
+	if interceptor == nil {
+		return srv.(DecayServiceServer).TraceDalitzBoundary(ctx, in)
+	}
+	info := &grpc.UnaryServerInfo{
+		Server:     srv,
+		FullMethod: DecayService_TraceDalitzBoundary_FullMethodName,
+	}
+	handler := func(ctx context.Context, req interface{}) (interface{}, error) {
+		return srv.(DecayServiceServer).TraceDalitzBoundary(ctx, req.(*TraceDalitzBoundaryRequest))
+	}
+	return interceptor(ctx, in, info, handler)
+}
+
 // DecayService_ServiceDesc is the grpc.ServiceDesc for DecayService service.
 // It's only intended for direct use with grpc.RegisterService,
 // and not to be introspected or modified (even as a copy)
@@ -124,6 +166,10 @@ var DecayService_ServiceDesc = grpc.ServiceDesc{
 		{
 			MethodName: "DescribeDecay",
 			Handler:    _DecayService_DescribeDecay_Handler,
+		},
+		{
+			MethodName: "TraceDalitzBoundary",
+			Handler:    _DecayService_TraceDalitzBoundary_Handler,
 		},
 	},
 	Streams:  []grpc.StreamDesc{},

@@ -24,72 +24,58 @@ const (
 	_ = protoimpl.EnforceVersion(protoimpl.MaxVersion - 20)
 )
 
-// ChannelState says whether a channel can be reached.
-type ChannelState int32
+// LimitMasses says which masses of the products limits are for.
+type LimitMasses int32
 
 const (
-	// No initial state was given.
-	ChannelState_CHANNEL_STATE_UNSPECIFIED ChannelState = 0
-	// Open with nominal masses.
-	ChannelState_CHANNEL_STATE_OPEN ChannelState = 1
-	// Closed with nominal masses, open with the lightest stated final state.
-	ChannelState_CHANNEL_STATE_OPEN_THROUGH_WIDTH ChannelState = 2
-	// The excess energy is zero within the stated bound.
-	ChannelState_CHANNEL_STATE_AT_THRESHOLD ChannelState = 3
-	// Closed.
-	ChannelState_CHANNEL_STATE_CLOSED ChannelState = 4
-	// One-body product: s equals its mass squared within the stated bound.
-	ChannelState_CHANNEL_STATE_ON_POINT ChannelState = 5
-	// One-body product: s differs from its mass squared.
-	ChannelState_CHANNEL_STATE_OFF_POINT ChannelState = 6
+	// No limits are given.
+	LimitMasses_LIMIT_MASSES_UNSPECIFIED LimitMasses = 0
+	// The nominal masses of the table.
+	LimitMasses_LIMIT_MASSES_NOMINAL LimitMasses = 1
+	// The least masses that the stated decays allow. Upper ends then hold for all
+	// masses that the widths allow; lower ends of momenta and the angles are those
+	// of the least masses alone.
+	LimitMasses_LIMIT_MASSES_LIGHTEST LimitMasses = 2
 )
 
-// Enum value maps for ChannelState.
+// Enum value maps for LimitMasses.
 var (
-	ChannelState_name = map[int32]string{
-		0: "CHANNEL_STATE_UNSPECIFIED",
-		1: "CHANNEL_STATE_OPEN",
-		2: "CHANNEL_STATE_OPEN_THROUGH_WIDTH",
-		3: "CHANNEL_STATE_AT_THRESHOLD",
-		4: "CHANNEL_STATE_CLOSED",
-		5: "CHANNEL_STATE_ON_POINT",
-		6: "CHANNEL_STATE_OFF_POINT",
+	LimitMasses_name = map[int32]string{
+		0: "LIMIT_MASSES_UNSPECIFIED",
+		1: "LIMIT_MASSES_NOMINAL",
+		2: "LIMIT_MASSES_LIGHTEST",
 	}
-	ChannelState_value = map[string]int32{
-		"CHANNEL_STATE_UNSPECIFIED":        0,
-		"CHANNEL_STATE_OPEN":               1,
-		"CHANNEL_STATE_OPEN_THROUGH_WIDTH": 2,
-		"CHANNEL_STATE_AT_THRESHOLD":       3,
-		"CHANNEL_STATE_CLOSED":             4,
-		"CHANNEL_STATE_ON_POINT":           5,
-		"CHANNEL_STATE_OFF_POINT":          6,
+	LimitMasses_value = map[string]int32{
+		"LIMIT_MASSES_UNSPECIFIED": 0,
+		"LIMIT_MASSES_NOMINAL":     1,
+		"LIMIT_MASSES_LIGHTEST":    2,
 	}
 )
 
-func (x ChannelState) Enum() *ChannelState {
-	p := new(ChannelState)
+func (x LimitMasses) Enum() *LimitMasses {
+	p := new(LimitMasses)
 	*p = x
 	return p
 }
 
-func (x ChannelState) String() string {
+func (x LimitMasses) String() string {
 	return protoimpl.X.EnumStringOf(x.Descriptor(), protoreflect.EnumNumber(x))
 }
 
-func (ChannelState) Descriptor() protoreflect.EnumDescriptor {
+func (LimitMasses) Descriptor() protoreflect.EnumDescriptor {
 	return file_kinegate_v1_reaction_proto_enumTypes[0].Descriptor()
 }
 
-func (ChannelState) Type() protoreflect.EnumType {
+func (LimitMasses) Type() protoreflect.EnumType {
 	return &file_kinegate_v1_reaction_proto_enumTypes[0]
 }
 
-func (x ChannelState) Number() protoreflect.EnumNumber {
+func (x LimitMasses) Number() protoreflect.EnumNumber {
 	return protoreflect.EnumNumber(x)
 }
 
-// Deprecated: Use ChannelState.Descriptor instead.
-func (ChannelState) EnumDescriptor() ([]byte, []int) {
+// Deprecated: Use LimitMasses.Descriptor instead.
+func (LimitMasses) EnumDescriptor() ([]byte, []int) {
 	return file_kinegate_v1_reaction_proto_rawDescGZIP(), []int{0}
 }
 
@@ -215,7 +201,15 @@ type DescribeReactionRequest struct {
 	Form isDescribeReactionRequest_Form `protobuf_oneof:"form"`
 	// How the initial particles move. Absent: only what does not need an energy
 	// is answered (threshold on a target at rest, conservation).
-	InitialState  *InitialState `protobuf:"bytes,3,opt,name=initial_state,json=initialState,proto3" json:"initial_state,omitempty"`
+	InitialState *InitialState `protobuf:"bytes,3,opt,name=initial_state,json=initialState,proto3" json:"initial_state,omitempty"`
+	// Also give the volume of phase space.
+	WithPhaseSpaceVolume bool `protobuf:"varint,4,opt,name=with_phase_space_volume,json=withPhaseSpaceVolume,proto3" json:"with_phase_space_volume,omitempty"`
+	// Squared momentum transfers whose ranges are wanted, at most 500. Empty: those
+	// from either initial particle to every single product.
+	MomentumTransfers []*MomentumTransferPair `protobuf:"bytes,5,rep,name=momentum_transfers,json=momentumTransfers,proto3" json:"momentum_transfers,omitempty"`
+	// The second initial particle, p or n, is bound in this nucleus at rest: the
+	// quasi-free thresholds are wanted beside those on the free nucleon.
+	BoundNucleon  *BoundNucleon `protobuf:"bytes,6,opt,name=bound_nucleon,json=boundNucleon,proto3" json:"bound_nucleon,omitempty"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
 }
@@ -282,6 +276,27 @@ func (x *DescribeReactionRequest) GetInitialState() *InitialState {
 	return nil
 }
 
+func (x *DescribeReactionRequest) GetWithPhaseSpaceVolume() bool {
+	if x != nil {
+		return x.WithPhaseSpaceVolume
+	}
+	return false
+}
+
+func (x *DescribeReactionRequest) GetMomentumTransfers() []*MomentumTransferPair {
+	if x != nil {
+		return x.MomentumTransfers
+	}
+	return nil
+}
+
+func (x *DescribeReactionRequest) GetBoundNucleon() *BoundNucleon {
+	if x != nil {
+		return x.BoundNucleon
+	}
+	return nil
+}
+
 type isDescribeReactionRequest_Form interface {
 	isDescribeReactionRequest_Form()
 }
@@ -299,6 +314,117 @@ type DescribeReactionRequest_StructuredReaction struct {
 func (*DescribeReactionRequest_Reaction) isDescribeReactionRequest_Form() {}
 
 func (*DescribeReactionRequest_StructuredReaction) isDescribeReactionRequest_Form() {}
+
+// MomentumTransferPair names one squared momentum transfer.
+type MomentumTransferPair struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// The initial particle.
+	Initial InitialParticle `protobuf:"varint,1,opt,name=initial,proto3,enum=kinegate.v1.InitialParticle" json:"initial,omitempty"`
+	// References of the products whose summed four-momentum is subtracted: products
+	// of the right side, each once, or "X".
+	Products      []string `protobuf:"bytes,2,rep,name=products,proto3" json:"products,omitempty"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
+}
+
+func (x *MomentumTransferPair) Reset() {
+	*x = MomentumTransferPair{}
+	mi := &file_kinegate_v1_reaction_proto_msgTypes[1]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *MomentumTransferPair) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*MomentumTransferPair) ProtoMessage() {}
+
+func (x *MomentumTransferPair) ProtoReflect() protoreflect.Message {
+	mi := &file_kinegate_v1_reaction_proto_msgTypes[1]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use MomentumTransferPair.ProtoReflect.Descriptor instead.
+func (*MomentumTransferPair) Descriptor() ([]byte, []int) {
+	return file_kinegate_v1_reaction_proto_rawDescGZIP(), []int{1}
+}
+
+func (x *MomentumTransferPair) GetInitial() InitialParticle {
+	if x != nil {
+		return x.Initial
+	}
+	return InitialParticle_INITIAL_PARTICLE_UNSPECIFIED
+}
+
+func (x *MomentumTransferPair) GetProducts() []string {
+	if x != nil {
+		return x.Products
+	}
+	return nil
+}
+
+// BoundNucleon says in what nucleus the struck nucleon is bound.
+type BoundNucleon struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// Name of the nucleus, such as "d" or "C12".
+	Nucleus string `protobuf:"bytes,1,opt,name=nucleus,proto3" json:"nucleus,omitempty"`
+	// Largest momentum of the nucleon in the nucleus, within [0, 0.5].
+	FermiMomentumGev float64 `protobuf:"fixed64,2,opt,name=fermi_momentum_gev,json=fermiMomentumGev,proto3" json:"fermi_momentum_gev,omitempty"`
+	unknownFields    protoimpl.UnknownFields
+	sizeCache        protoimpl.SizeCache
+}
+
+func (x *BoundNucleon) Reset() {
+	*x = BoundNucleon{}
+	mi := &file_kinegate_v1_reaction_proto_msgTypes[2]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *BoundNucleon) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*BoundNucleon) ProtoMessage() {}
+
+func (x *BoundNucleon) ProtoReflect() protoreflect.Message {
+	mi := &file_kinegate_v1_reaction_proto_msgTypes[2]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use BoundNucleon.ProtoReflect.Descriptor instead.
+func (*BoundNucleon) Descriptor() ([]byte, []int) {
+	return file_kinegate_v1_reaction_proto_rawDescGZIP(), []int{2}
+}
+
+func (x *BoundNucleon) GetNucleus() string {
+	if x != nil {
+		return x.Nucleus
+	}
+	return ""
+}
+
+func (x *BoundNucleon) GetFermiMomentumGev() float64 {
+	if x != nil {
+		return x.FermiMomentumGev
+	}
+	return 0
+}
 
 // DescribeReactionResponse describes the channel.
 type DescribeReactionResponse struct {
@@ -329,13 +455,15 @@ type DescribeReactionResponse struct {
 	BeamEnergyDeficitGev *float64 `protobuf:"fixed64,9,opt,name=beam_energy_deficit_gev,json=beamEnergyDeficitGev,proto3,oneof" json:"beam_energy_deficit_gev,omitempty"`
 	// For a one-body product: s minus the square of its mass.
 	OneBodySMinusM2Gev2 *float64 `protobuf:"fixed64,10,opt,name=one_body_s_minus_m2_gev2,json=oneBodySMinusM2Gev2,proto3,oneof" json:"one_body_s_minus_m2_gev2,omitempty"`
-	// Limits of every product, numbered depth first from 0 with intermediates
-	// included. Empty when the channel is closed or no energy was given.
+	// Limits of every product of the right side, for two to eight of them. Empty
+	// when the channel is closed or no energy was given. Beside X, momenta start
+	// at 0 where the lightest X has a definite one, since X may be heavier.
 	Products []*ProductLimits `protobuf:"bytes,11,rep,name=products,proto3" json:"products,omitempty"`
 	// Limits of the invariant mass of every subset of two or more products of
 	// the reaction's right side, proper subsets only, to eight products.
 	SubsetMasses []*SubsetMassLimits `protobuf:"bytes,12,rep,name=subset_masses,json=subsetMasses,proto3" json:"subset_masses,omitempty"`
-	// Limits of squared four-momentum transfers. Empty when closed.
+	// Limits of the squared four-momentum transfers asked for, in their order.
+	// Empty when closed.
 	MomentumTransfers []*MomentumTransferLimits `protobuf:"bytes,13,rep,name=momentum_transfers,json=momentumTransfers,proto3" json:"momentum_transfers,omitempty"`
 	// How each stated decay is classed; decays are reported, never refused for
 	// flavour.
@@ -348,14 +476,22 @@ type DescribeReactionResponse struct {
 	// Breit-Wigner.
 	Remarks []string `protobuf:"bytes,17,rep,name=remarks,proto3" json:"remarks,omitempty"`
 	// Version of the particle table used.
-	TableVersion  string `protobuf:"bytes,18,opt,name=table_version,json=tableVersion,proto3" json:"table_version,omitempty"`
+	TableVersion string `protobuf:"bytes,18,opt,name=table_version,json=tableVersion,proto3" json:"table_version,omitempty"`
+	// Masses that the limits of products, subsets and momentum transfers and the
+	// volume of phase space are for; unspecified where there are none.
+	LimitMasses LimitMasses `protobuf:"varint,19,opt,name=limit_masses,json=limitMasses,proto3,enum=kinegate.v1.LimitMasses" json:"limit_masses,omitempty"`
+	// Volume of phase space, where it was asked for and the channel is open and
+	// not inclusive.
+	PhaseSpaceVolume *PhaseSpaceVolume `protobuf:"bytes,20,opt,name=phase_space_volume,json=phaseSpaceVolume,proto3" json:"phase_space_volume,omitempty"`
+	// The reaction on the nucleon bound in the nucleus that was named.
+	QuasiFree     *QuasiFree `protobuf:"bytes,21,opt,name=quasi_free,json=quasiFree,proto3" json:"quasi_free,omitempty"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
 }
 
 func (x *DescribeReactionResponse) Reset() {
 	*x = DescribeReactionResponse{}
-	mi := &file_kinegate_v1_reaction_proto_msgTypes[1]
+	mi := &file_kinegate_v1_reaction_proto_msgTypes[3]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -367,7 +503,7 @@ func (x *DescribeReactionResponse) String() string {
 func (*DescribeReactionResponse) ProtoMessage() {}
 
 func (x *DescribeReactionResponse) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_reaction_proto_msgTypes[1]
+	mi := &file_kinegate_v1_reaction_proto_msgTypes[3]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -380,7 +516,7 @@ func (x *DescribeReactionResponse) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use DescribeReactionResponse.ProtoReflect.Descriptor instead.
 func (*DescribeReactionResponse) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_reaction_proto_rawDescGZIP(), []int{1}
+	return file_kinegate_v1_reaction_proto_rawDescGZIP(), []int{3}
 }
 
 func (x *DescribeReactionResponse) GetReaction() string {
@@ -509,248 +645,53 @@ func (x *DescribeReactionResponse) GetTableVersion() string {
 	return ""
 }
 
-// CentreOfMass is the energy and motion of the initial state.
-type CentreOfMass struct {
-	state protoimpl.MessageState `protogen:"open.v1"`
-	// Square of the energy in the centre-of-mass frame.
-	SGev2 float64 `protobuf:"fixed64,1,opt,name=s_gev2,json=sGev2,proto3" json:"s_gev2,omitempty"`
-	// Energy in the centre-of-mass frame.
-	SqrtSGev float64 `protobuf:"fixed64,2,opt,name=sqrt_s_gev,json=sqrtSGev,proto3" json:"sqrt_s_gev,omitempty"`
-	// Sum of the two initial four-momenta in the laboratory.
-	Total *FourMomentum `protobuf:"bytes,3,opt,name=total,proto3" json:"total,omitempty"`
-	// Speed of the centre of mass in the laboratory over that of light.
-	Beta float64 `protobuf:"fixed64,4,opt,name=beta,proto3" json:"beta,omitempty"`
-	// Lorentz factor of the centre of mass in the laboratory.
-	Gamma float64 `protobuf:"fixed64,5,opt,name=gamma,proto3" json:"gamma,omitempty"`
-	// Momentum of either initial particle in the centre-of-mass frame.
-	InitialMomentumGev float64 `protobuf:"fixed64,6,opt,name=initial_momentum_gev,json=initialMomentumGev,proto3" json:"initial_momentum_gev,omitempty"`
-	// Momentum of either product in the centre-of-mass frame; absent unless
-	// there are two products and the channel is open.
-	FinalMomentumGev *float64 `protobuf:"fixed64,7,opt,name=final_momentum_gev,json=finalMomentumGev,proto3,oneof" json:"final_momentum_gev,omitempty"`
-	unknownFields    protoimpl.UnknownFields
-	sizeCache        protoimpl.SizeCache
-}
-
-func (x *CentreOfMass) Reset() {
-	*x = CentreOfMass{}
-	mi := &file_kinegate_v1_reaction_proto_msgTypes[2]
-	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
-	ms.StoreMessageInfo(mi)
-}
-
-func (x *CentreOfMass) String() string {
-	return protoimpl.X.MessageStringOf(x)
-}
-
-func (*CentreOfMass) ProtoMessage() {}
-
-func (x *CentreOfMass) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_reaction_proto_msgTypes[2]
+func (x *DescribeReactionResponse) GetLimitMasses() LimitMasses {
 	if x != nil {
-		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
-		if ms.LoadMessageInfo() == nil {
-			ms.StoreMessageInfo(mi)
-		}
-		return ms
+		return x.LimitMasses
 	}
-	return mi.MessageOf(x)
+	return LimitMasses_LIMIT_MASSES_UNSPECIFIED
 }
 
-// Deprecated: Use CentreOfMass.ProtoReflect.Descriptor instead.
-func (*CentreOfMass) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_reaction_proto_rawDescGZIP(), []int{2}
-}
-
-func (x *CentreOfMass) GetSGev2() float64 {
+func (x *DescribeReactionResponse) GetPhaseSpaceVolume() *PhaseSpaceVolume {
 	if x != nil {
-		return x.SGev2
-	}
-	return 0
-}
-
-func (x *CentreOfMass) GetSqrtSGev() float64 {
-	if x != nil {
-		return x.SqrtSGev
-	}
-	return 0
-}
-
-func (x *CentreOfMass) GetTotal() *FourMomentum {
-	if x != nil {
-		return x.Total
+		return x.PhaseSpaceVolume
 	}
 	return nil
 }
 
-func (x *CentreOfMass) GetBeta() float64 {
+func (x *DescribeReactionResponse) GetQuasiFree() *QuasiFree {
 	if x != nil {
-		return x.Beta
+		return x.QuasiFree
 	}
-	return 0
+	return nil
 }
 
-func (x *CentreOfMass) GetGamma() float64 {
-	if x != nil {
-		return x.Gamma
-	}
-	return 0
-}
-
-func (x *CentreOfMass) GetInitialMomentumGev() float64 {
-	if x != nil {
-		return x.InitialMomentumGev
-	}
-	return 0
-}
-
-func (x *CentreOfMass) GetFinalMomentumGev() float64 {
-	if x != nil && x.FinalMomentumGev != nil {
-		return *x.FinalMomentumGev
-	}
-	return 0
-}
-
-// Threshold is the smallest energy of beam 1 that opens a channel, all else
-// fixed. Uncertainties take one total derivative per mass of the table, add
-// different masses in quadrature and neglect their correlations.
-type Threshold struct {
+// PhaseSpaceVolume is the volume of phase space of n products:
+// the integral of prod d3p/(2E) delta4(P - sum p), without factors of 2 pi.
+type PhaseSpaceVolume struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
-	// Sum of the product masses: sqrt(s) at threshold.
-	SqrtSGev float64 `protobuf:"fixed64,1,opt,name=sqrt_s_gev,json=sqrtSGev,proto3" json:"sqrt_s_gev,omitempty"`
-	// Uncertainty of sqrt(s) at threshold from the masses.
-	SqrtSUncertaintyGev float64 `protobuf:"fixed64,2,opt,name=sqrt_s_uncertainty_gev,json=sqrtSUncertaintyGev,proto3" json:"sqrt_s_uncertainty_gev,omitempty"`
-	// Total energy of beam 1 at threshold. This and the members below are
-	// absent where no energy of beam 1 opens the channel (two photons at angle
-	// 0) and where the initial state has no beam.
-	TotalEnergyGev *float64 `protobuf:"fixed64,3,opt,name=total_energy_gev,json=totalEnergyGev,proto3,oneof" json:"total_energy_gev,omitempty"`
-	// Kinetic energy of beam 1 at threshold.
-	KineticEnergyGev *float64 `protobuf:"fixed64,4,opt,name=kinetic_energy_gev,json=kineticEnergyGev,proto3,oneof" json:"kinetic_energy_gev,omitempty"`
-	// Momentum of beam 1 at threshold.
-	MomentumGev *float64 `protobuf:"fixed64,5,opt,name=momentum_gev,json=momentumGev,proto3,oneof" json:"momentum_gev,omitempty"`
-	// Uncertainty of the beam energy at threshold from the masses.
-	EnergyUncertaintyGev *float64 `protobuf:"fixed64,6,opt,name=energy_uncertainty_gev,json=energyUncertaintyGev,proto3,oneof" json:"energy_uncertainty_gev,omitempty"`
-	// Already open with beam 1 at rest; the beam energy is then its mass.
-	OpenAtRest    bool `protobuf:"varint,7,opt,name=open_at_rest,json=openAtRest,proto3" json:"open_at_rest,omitempty"`
+	// The volume, in units of GeV to the power below.
+	Volume float64 `protobuf:"fixed64,1,opt,name=volume,proto3" json:"volume,omitempty"`
+	// The power, 2n - 4.
+	GevPower      int32 `protobuf:"varint,2,opt,name=gev_power,json=gevPower,proto3" json:"gev_power,omitempty"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
 }
 
-func (x *Threshold) Reset() {
-	*x = Threshold{}
-	mi := &file_kinegate_v1_reaction_proto_msgTypes[3]
-	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
-	ms.StoreMessageInfo(mi)
-}
-
-func (x *Threshold) String() string {
-	return protoimpl.X.MessageStringOf(x)
-}
-
-func (*Threshold) ProtoMessage() {}
-
-func (x *Threshold) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_reaction_proto_msgTypes[3]
-	if x != nil {
-		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
-		if ms.LoadMessageInfo() == nil {
-			ms.StoreMessageInfo(mi)
-		}
-		return ms
-	}
-	return mi.MessageOf(x)
-}
-
-// Deprecated: Use Threshold.ProtoReflect.Descriptor instead.
-func (*Threshold) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_reaction_proto_rawDescGZIP(), []int{3}
-}
-
-func (x *Threshold) GetSqrtSGev() float64 {
-	if x != nil {
-		return x.SqrtSGev
-	}
-	return 0
-}
-
-func (x *Threshold) GetSqrtSUncertaintyGev() float64 {
-	if x != nil {
-		return x.SqrtSUncertaintyGev
-	}
-	return 0
-}
-
-func (x *Threshold) GetTotalEnergyGev() float64 {
-	if x != nil && x.TotalEnergyGev != nil {
-		return *x.TotalEnergyGev
-	}
-	return 0
-}
-
-func (x *Threshold) GetKineticEnergyGev() float64 {
-	if x != nil && x.KineticEnergyGev != nil {
-		return *x.KineticEnergyGev
-	}
-	return 0
-}
-
-func (x *Threshold) GetMomentumGev() float64 {
-	if x != nil && x.MomentumGev != nil {
-		return *x.MomentumGev
-	}
-	return 0
-}
-
-func (x *Threshold) GetEnergyUncertaintyGev() float64 {
-	if x != nil && x.EnergyUncertaintyGev != nil {
-		return *x.EnergyUncertaintyGev
-	}
-	return 0
-}
-
-func (x *Threshold) GetOpenAtRest() bool {
-	if x != nil {
-		return x.OpenAtRest
-	}
-	return false
-}
-
-// ProductLimits is where one product can go.
-type ProductLimits struct {
-	state protoimpl.MessageState `protogen:"open.v1"`
-	// Reference of the product, such as "pi0[1]".
-	Product string `protobuf:"bytes,1,opt,name=product,proto3" json:"product,omitempty"`
-	// Number of the product, depth first from 0, intermediates included.
-	Number int32 `protobuf:"varint,2,opt,name=number,proto3" json:"number,omitempty"`
-	// Nominal mass used.
-	MassGev float64 `protobuf:"fixed64,3,opt,name=mass_gev,json=massGev,proto3" json:"mass_gev,omitempty"`
-	// Total energy in the centre-of-mass frame.
-	CentreOfMassEnergy *EnergyRange `protobuf:"bytes,4,opt,name=centre_of_mass_energy,json=centreOfMassEnergy,proto3" json:"centre_of_mass_energy,omitempty"`
-	// Momentum in the centre-of-mass frame.
-	CentreOfMassMomentum *EnergyRange `protobuf:"bytes,5,opt,name=centre_of_mass_momentum,json=centreOfMassMomentum,proto3" json:"centre_of_mass_momentum,omitempty"`
-	// Total energy in the laboratory.
-	LaboratoryEnergy *EnergyRange `protobuf:"bytes,6,opt,name=laboratory_energy,json=laboratoryEnergy,proto3" json:"laboratory_energy,omitempty"`
-	// Momentum in the laboratory.
-	LaboratoryMomentum *EnergyRange `protobuf:"bytes,7,opt,name=laboratory_momentum,json=laboratoryMomentum,proto3" json:"laboratory_momentum,omitempty"`
-	// Angle from +z in the laboratory.
-	LaboratoryAngle *AngleRange `protobuf:"bytes,8,opt,name=laboratory_angle,json=laboratoryAngle,proto3" json:"laboratory_angle,omitempty"`
-	unknownFields   protoimpl.UnknownFields
-	sizeCache       protoimpl.SizeCache
-}
-
-func (x *ProductLimits) Reset() {
-	*x = ProductLimits{}
+func (x *PhaseSpaceVolume) Reset() {
+	*x = PhaseSpaceVolume{}
 	mi := &file_kinegate_v1_reaction_proto_msgTypes[4]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
 
-func (x *ProductLimits) String() string {
+func (x *PhaseSpaceVolume) String() string {
 	return protoimpl.X.MessageStringOf(x)
 }
 
-func (*ProductLimits) ProtoMessage() {}
+func (*PhaseSpaceVolume) ProtoMessage() {}
 
-func (x *ProductLimits) ProtoReflect() protoreflect.Message {
+func (x *PhaseSpaceVolume) ProtoReflect() protoreflect.Message {
 	mi := &file_kinegate_v1_reaction_proto_msgTypes[4]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
@@ -762,65 +703,182 @@ func (x *ProductLimits) ProtoReflect() protoreflect.Message {
 	return mi.MessageOf(x)
 }
 
-// Deprecated: Use ProductLimits.ProtoReflect.Descriptor instead.
-func (*ProductLimits) Descriptor() ([]byte, []int) {
+// Deprecated: Use PhaseSpaceVolume.ProtoReflect.Descriptor instead.
+func (*PhaseSpaceVolume) Descriptor() ([]byte, []int) {
 	return file_kinegate_v1_reaction_proto_rawDescGZIP(), []int{4}
 }
 
-func (x *ProductLimits) GetProduct() string {
+func (x *PhaseSpaceVolume) GetVolume() float64 {
 	if x != nil {
-		return x.Product
+		return x.Volume
+	}
+	return 0
+}
+
+func (x *PhaseSpaceVolume) GetGevPower() int32 {
+	if x != nil {
+		return x.GevPower
+	}
+	return 0
+}
+
+// QuasiFree is a reaction on a nucleon bound in a nucleus at rest. Its threshold is
+// a range, since the nucleon moves.
+type QuasiFree struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// The nucleus.
+	Nucleus string `protobuf:"bytes,1,opt,name=nucleus,proto3" json:"nucleus,omitempty"`
+	// What is left of it.
+	Spectator string `protobuf:"bytes,2,opt,name=spectator,proto3" json:"spectator,omitempty"`
+	// Largest momentum of the nucleon.
+	FermiMomentumGev float64 `protobuf:"fixed64,3,opt,name=fermi_momentum_gev,json=fermiMomentumGev,proto3" json:"fermi_momentum_gev,omitempty"`
+	// The model, in words.
+	Model string `protobuf:"bytes,4,opt,name=model,proto3" json:"model,omitempty"`
+	// State in the given beam on a target at rest; unspecified without one. OPEN as
+	// soon as some nucleons can take part.
+	State ChannelState `protobuf:"varint,5,opt,name=state,proto3,enum=kinegate.v1.ChannelState" json:"state,omitempty"`
+	// Every nucleon can take part at the given energy.
+	EveryNucleon bool `protobuf:"varint,6,opt,name=every_nucleon,json=everyNucleon,proto3" json:"every_nucleon,omitempty"`
+	// Threshold on the nucleon at rest in the nucleus; its binding counts.
+	AtRest *Threshold `protobuf:"bytes,7,opt,name=at_rest,json=atRest,proto3" json:"at_rest,omitempty"`
+	// Lowest threshold over all momenta of the nucleon.
+	Lowest *Threshold `protobuf:"bytes,8,opt,name=lowest,proto3" json:"lowest,omitempty"`
+	// Momentum of the nucleon, against the beam, at the lowest threshold.
+	LowestNucleonMomentumGev float64 `protobuf:"fixed64,9,opt,name=lowest_nucleon_momentum_gev,json=lowestNucleonMomentumGev,proto3" json:"lowest_nucleon_momentum_gev,omitempty"`
+	// Highest threshold over all momenta of the nucleon: that with the largest
+	// momentum along the beam.
+	Highest *Threshold `protobuf:"bytes,10,opt,name=highest,proto3" json:"highest,omitempty"`
+	// Threshold on the whole nucleus for the products and the spectator, which no
+	// momentum of the nucleon undercuts.
+	Absolute *Threshold `protobuf:"bytes,11,opt,name=absolute,proto3" json:"absolute,omitempty"`
+	// Threshold of the coherent reaction, in which the nucleus stays whole in the
+	// place of the nucleon. Absent where the nucleon is no product.
+	Coherent *Threshold `protobuf:"bytes,12,opt,name=coherent,proto3" json:"coherent,omitempty"`
+	// The coherent reaction in text, empty where there is none.
+	CoherentReaction string `protobuf:"bytes,13,opt,name=coherent_reaction,json=coherentReaction,proto3" json:"coherent_reaction,omitempty"`
+	unknownFields    protoimpl.UnknownFields
+	sizeCache        protoimpl.SizeCache
+}
+
+func (x *QuasiFree) Reset() {
+	*x = QuasiFree{}
+	mi := &file_kinegate_v1_reaction_proto_msgTypes[5]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *QuasiFree) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*QuasiFree) ProtoMessage() {}
+
+func (x *QuasiFree) ProtoReflect() protoreflect.Message {
+	mi := &file_kinegate_v1_reaction_proto_msgTypes[5]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use QuasiFree.ProtoReflect.Descriptor instead.
+func (*QuasiFree) Descriptor() ([]byte, []int) {
+	return file_kinegate_v1_reaction_proto_rawDescGZIP(), []int{5}
+}
+
+func (x *QuasiFree) GetNucleus() string {
+	if x != nil {
+		return x.Nucleus
 	}
 	return ""
 }
 
-func (x *ProductLimits) GetNumber() int32 {
+func (x *QuasiFree) GetSpectator() string {
 	if x != nil {
-		return x.Number
+		return x.Spectator
+	}
+	return ""
+}
+
+func (x *QuasiFree) GetFermiMomentumGev() float64 {
+	if x != nil {
+		return x.FermiMomentumGev
 	}
 	return 0
 }
 
-func (x *ProductLimits) GetMassGev() float64 {
+func (x *QuasiFree) GetModel() string {
 	if x != nil {
-		return x.MassGev
+		return x.Model
+	}
+	return ""
+}
+
+func (x *QuasiFree) GetState() ChannelState {
+	if x != nil {
+		return x.State
+	}
+	return ChannelState_CHANNEL_STATE_UNSPECIFIED
+}
+
+func (x *QuasiFree) GetEveryNucleon() bool {
+	if x != nil {
+		return x.EveryNucleon
+	}
+	return false
+}
+
+func (x *QuasiFree) GetAtRest() *Threshold {
+	if x != nil {
+		return x.AtRest
+	}
+	return nil
+}
+
+func (x *QuasiFree) GetLowest() *Threshold {
+	if x != nil {
+		return x.Lowest
+	}
+	return nil
+}
+
+func (x *QuasiFree) GetLowestNucleonMomentumGev() float64 {
+	if x != nil {
+		return x.LowestNucleonMomentumGev
 	}
 	return 0
 }
 
-func (x *ProductLimits) GetCentreOfMassEnergy() *EnergyRange {
+func (x *QuasiFree) GetHighest() *Threshold {
 	if x != nil {
-		return x.CentreOfMassEnergy
+		return x.Highest
 	}
 	return nil
 }
 
-func (x *ProductLimits) GetCentreOfMassMomentum() *EnergyRange {
+func (x *QuasiFree) GetAbsolute() *Threshold {
 	if x != nil {
-		return x.CentreOfMassMomentum
+		return x.Absolute
 	}
 	return nil
 }
 
-func (x *ProductLimits) GetLaboratoryEnergy() *EnergyRange {
+func (x *QuasiFree) GetCoherent() *Threshold {
 	if x != nil {
-		return x.LaboratoryEnergy
+		return x.Coherent
 	}
 	return nil
 }
 
-func (x *ProductLimits) GetLaboratoryMomentum() *EnergyRange {
+func (x *QuasiFree) GetCoherentReaction() string {
 	if x != nil {
-		return x.LaboratoryMomentum
+		return x.CoherentReaction
 	}
-	return nil
-}
-
-func (x *ProductLimits) GetLaboratoryAngle() *AngleRange {
-	if x != nil {
-		return x.LaboratoryAngle
-	}
-	return nil
+	return ""
 }
 
 // SubsetMassLimits is the range of the invariant mass of some products.
@@ -836,7 +894,7 @@ type SubsetMassLimits struct {
 
 func (x *SubsetMassLimits) Reset() {
 	*x = SubsetMassLimits{}
-	mi := &file_kinegate_v1_reaction_proto_msgTypes[5]
+	mi := &file_kinegate_v1_reaction_proto_msgTypes[6]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -848,7 +906,7 @@ func (x *SubsetMassLimits) String() string {
 func (*SubsetMassLimits) ProtoMessage() {}
 
 func (x *SubsetMassLimits) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_reaction_proto_msgTypes[5]
+	mi := &file_kinegate_v1_reaction_proto_msgTypes[6]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -861,7 +919,7 @@ func (x *SubsetMassLimits) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use SubsetMassLimits.ProtoReflect.Descriptor instead.
 func (*SubsetMassLimits) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_reaction_proto_rawDescGZIP(), []int{5}
+	return file_kinegate_v1_reaction_proto_rawDescGZIP(), []int{6}
 }
 
 func (x *SubsetMassLimits) GetProducts() []string {
@@ -898,7 +956,7 @@ type MomentumTransferLimits struct {
 
 func (x *MomentumTransferLimits) Reset() {
 	*x = MomentumTransferLimits{}
-	mi := &file_kinegate_v1_reaction_proto_msgTypes[6]
+	mi := &file_kinegate_v1_reaction_proto_msgTypes[7]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -910,7 +968,7 @@ func (x *MomentumTransferLimits) String() string {
 func (*MomentumTransferLimits) ProtoMessage() {}
 
 func (x *MomentumTransferLimits) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_reaction_proto_msgTypes[6]
+	mi := &file_kinegate_v1_reaction_proto_msgTypes[7]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -923,7 +981,7 @@ func (x *MomentumTransferLimits) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use MomentumTransferLimits.ProtoReflect.Descriptor instead.
 func (*MomentumTransferLimits) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_reaction_proto_rawDescGZIP(), []int{6}
+	return file_kinegate_v1_reaction_proto_rawDescGZIP(), []int{7}
 }
 
 func (x *MomentumTransferLimits) GetInitial() InitialParticle {
@@ -970,7 +1028,7 @@ type DecayNote struct {
 
 func (x *DecayNote) Reset() {
 	*x = DecayNote{}
-	mi := &file_kinegate_v1_reaction_proto_msgTypes[7]
+	mi := &file_kinegate_v1_reaction_proto_msgTypes[8]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -982,7 +1040,7 @@ func (x *DecayNote) String() string {
 func (*DecayNote) ProtoMessage() {}
 
 func (x *DecayNote) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_reaction_proto_msgTypes[7]
+	mi := &file_kinegate_v1_reaction_proto_msgTypes[8]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -995,7 +1053,7 @@ func (x *DecayNote) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use DecayNote.ProtoReflect.Descriptor instead.
 func (*DecayNote) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_reaction_proto_rawDescGZIP(), []int{7}
+	return file_kinegate_v1_reaction_proto_rawDescGZIP(), []int{8}
 }
 
 func (x *DecayNote) GetDecay() string {
@@ -1038,7 +1096,7 @@ type InclusiveRemainder struct {
 
 func (x *InclusiveRemainder) Reset() {
 	*x = InclusiveRemainder{}
-	mi := &file_kinegate_v1_reaction_proto_msgTypes[8]
+	mi := &file_kinegate_v1_reaction_proto_msgTypes[9]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -1050,7 +1108,7 @@ func (x *InclusiveRemainder) String() string {
 func (*InclusiveRemainder) ProtoMessage() {}
 
 func (x *InclusiveRemainder) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_reaction_proto_msgTypes[8]
+	mi := &file_kinegate_v1_reaction_proto_msgTypes[9]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -1063,7 +1121,7 @@ func (x *InclusiveRemainder) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use InclusiveRemainder.ProtoReflect.Descriptor instead.
 func (*InclusiveRemainder) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_reaction_proto_rawDescGZIP(), []int{8}
+	return file_kinegate_v1_reaction_proto_rawDescGZIP(), []int{9}
 }
 
 func (x *InclusiveRemainder) GetChargeThirds() int32 {
@@ -1105,12 +1163,22 @@ var File_kinegate_v1_reaction_proto protoreflect.FileDescriptor
 
 const file_kinegate_v1_reaction_proto_rawDesc = "" +
 	"\n" +
-	"\x1akinegate/v1/reaction.proto\x12\vkinegate.v1\x1a\x1ckinegate/v1/kinematics.proto\"\xc9\x01\n" +
+	"\x1akinegate/v1/reaction.proto\x12\vkinegate.v1\x1a\x19kinegate/v1/channel.proto\x1a\x1akinegate/v1/channels.proto\x1a\x1ckinegate/v1/kinematics.proto\x1a\x18kinegate/v1/motion.proto\x1a\x19kinegate/v1/twobody.proto\"\x92\x03\n" +
 	"\x17DescribeReactionRequest\x12\x1c\n" +
 	"\breaction\x18\x01 \x01(\tH\x00R\breaction\x12H\n" +
 	"\x13structured_reaction\x18\x02 \x01(\v2\x15.kinegate.v1.ReactionH\x00R\x12structuredReaction\x12>\n" +
-	"\rinitial_state\x18\x03 \x01(\v2\x19.kinegate.v1.InitialStateR\finitialStateB\x06\n" +
-	"\x04form\"\xda\b\n" +
+	"\rinitial_state\x18\x03 \x01(\v2\x19.kinegate.v1.InitialStateR\finitialState\x125\n" +
+	"\x17with_phase_space_volume\x18\x04 \x01(\bR\x14withPhaseSpaceVolume\x12P\n" +
+	"\x12momentum_transfers\x18\x05 \x03(\v2!.kinegate.v1.MomentumTransferPairR\x11momentumTransfers\x12>\n" +
+	"\rbound_nucleon\x18\x06 \x01(\v2\x19.kinegate.v1.BoundNucleonR\fboundNucleonB\x06\n" +
+	"\x04form\"j\n" +
+	"\x14MomentumTransferPair\x126\n" +
+	"\ainitial\x18\x01 \x01(\x0e2\x1c.kinegate.v1.InitialParticleR\ainitial\x12\x1a\n" +
+	"\bproducts\x18\x02 \x03(\tR\bproducts\"V\n" +
+	"\fBoundNucleon\x12\x18\n" +
+	"\anucleus\x18\x01 \x01(\tR\anucleus\x12,\n" +
+	"\x12fermi_momentum_gev\x18\x02 \x01(\x01R\x10fermiMomentumGev\"\x9b\n" +
+	"\n" +
 	"\x18DescribeReactionResponse\x12\x1a\n" +
 	"\breaction\x18\x01 \x01(\tR\breaction\x12F\n" +
 	"\x13structured_reaction\x18\x02 \x01(\v2\x15.kinegate.v1.ReactionR\x12structuredReaction\x12/\n" +
@@ -1130,44 +1198,33 @@ const file_kinegate_v1_reaction_proto_rawDesc = "" +
 	"\tinclusive\x18\x0f \x01(\v2\x1f.kinegate.v1.InclusiveRemainderR\tinclusive\x12\x14\n" +
 	"\x05frame\x18\x10 \x01(\tR\x05frame\x12\x18\n" +
 	"\aremarks\x18\x11 \x03(\tR\aremarks\x12#\n" +
-	"\rtable_version\x18\x12 \x01(\tR\ftableVersionB\x14\n" +
+	"\rtable_version\x18\x12 \x01(\tR\ftableVersion\x12;\n" +
+	"\flimit_masses\x18\x13 \x01(\x0e2\x18.kinegate.v1.LimitMassesR\vlimitMasses\x12K\n" +
+	"\x12phase_space_volume\x18\x14 \x01(\v2\x1d.kinegate.v1.PhaseSpaceVolumeR\x10phaseSpaceVolume\x125\n" +
+	"\n" +
+	"quasi_free\x18\x15 \x01(\v2\x16.kinegate.v1.QuasiFreeR\tquasiFreeB\x14\n" +
 	"\x12_excess_energy_gevB\x1d\n" +
 	"\x1b_lightest_excess_energy_gevB\x1a\n" +
 	"\x18_beam_energy_deficit_gevB\x1b\n" +
-	"\x19_one_body_s_minus_m2_gev2\"\x9a\x02\n" +
-	"\fCentreOfMass\x12\x15\n" +
-	"\x06s_gev2\x18\x01 \x01(\x01R\x05sGev2\x12\x1c\n" +
-	"\n" +
-	"sqrt_s_gev\x18\x02 \x01(\x01R\bsqrtSGev\x12/\n" +
-	"\x05total\x18\x03 \x01(\v2\x19.kinegate.v1.FourMomentumR\x05total\x12\x12\n" +
-	"\x04beta\x18\x04 \x01(\x01R\x04beta\x12\x14\n" +
-	"\x05gamma\x18\x05 \x01(\x01R\x05gamma\x120\n" +
-	"\x14initial_momentum_gev\x18\x06 \x01(\x01R\x12initialMomentumGev\x121\n" +
-	"\x12final_momentum_gev\x18\a \x01(\x01H\x00R\x10finalMomentumGev\x88\x01\x01B\x15\n" +
-	"\x13_final_momentum_gev\"\x9d\x03\n" +
-	"\tThreshold\x12\x1c\n" +
-	"\n" +
-	"sqrt_s_gev\x18\x01 \x01(\x01R\bsqrtSGev\x123\n" +
-	"\x16sqrt_s_uncertainty_gev\x18\x02 \x01(\x01R\x13sqrtSUncertaintyGev\x12-\n" +
-	"\x10total_energy_gev\x18\x03 \x01(\x01H\x00R\x0etotalEnergyGev\x88\x01\x01\x121\n" +
-	"\x12kinetic_energy_gev\x18\x04 \x01(\x01H\x01R\x10kineticEnergyGev\x88\x01\x01\x12&\n" +
-	"\fmomentum_gev\x18\x05 \x01(\x01H\x02R\vmomentumGev\x88\x01\x01\x129\n" +
-	"\x16energy_uncertainty_gev\x18\x06 \x01(\x01H\x03R\x14energyUncertaintyGev\x88\x01\x01\x12 \n" +
-	"\fopen_at_rest\x18\a \x01(\bR\n" +
-	"openAtRestB\x13\n" +
-	"\x11_total_energy_gevB\x15\n" +
-	"\x13_kinetic_energy_gevB\x0f\n" +
-	"\r_momentum_gevB\x19\n" +
-	"\x17_energy_uncertainty_gev\"\xd0\x03\n" +
-	"\rProductLimits\x12\x18\n" +
-	"\aproduct\x18\x01 \x01(\tR\aproduct\x12\x16\n" +
-	"\x06number\x18\x02 \x01(\x05R\x06number\x12\x19\n" +
-	"\bmass_gev\x18\x03 \x01(\x01R\amassGev\x12K\n" +
-	"\x15centre_of_mass_energy\x18\x04 \x01(\v2\x18.kinegate.v1.EnergyRangeR\x12centreOfMassEnergy\x12O\n" +
-	"\x17centre_of_mass_momentum\x18\x05 \x01(\v2\x18.kinegate.v1.EnergyRangeR\x14centreOfMassMomentum\x12E\n" +
-	"\x11laboratory_energy\x18\x06 \x01(\v2\x18.kinegate.v1.EnergyRangeR\x10laboratoryEnergy\x12I\n" +
-	"\x13laboratory_momentum\x18\a \x01(\v2\x18.kinegate.v1.EnergyRangeR\x12laboratoryMomentum\x12B\n" +
-	"\x10laboratory_angle\x18\b \x01(\v2\x17.kinegate.v1.AngleRangeR\x0flaboratoryAngle\"\\\n" +
+	"\x19_one_body_s_minus_m2_gev2\"G\n" +
+	"\x10PhaseSpaceVolume\x12\x16\n" +
+	"\x06volume\x18\x01 \x01(\x01R\x06volume\x12\x1b\n" +
+	"\tgev_power\x18\x02 \x01(\x05R\bgevPower\"\xc4\x04\n" +
+	"\tQuasiFree\x12\x18\n" +
+	"\anucleus\x18\x01 \x01(\tR\anucleus\x12\x1c\n" +
+	"\tspectator\x18\x02 \x01(\tR\tspectator\x12,\n" +
+	"\x12fermi_momentum_gev\x18\x03 \x01(\x01R\x10fermiMomentumGev\x12\x14\n" +
+	"\x05model\x18\x04 \x01(\tR\x05model\x12/\n" +
+	"\x05state\x18\x05 \x01(\x0e2\x19.kinegate.v1.ChannelStateR\x05state\x12#\n" +
+	"\revery_nucleon\x18\x06 \x01(\bR\feveryNucleon\x12/\n" +
+	"\aat_rest\x18\a \x01(\v2\x16.kinegate.v1.ThresholdR\x06atRest\x12.\n" +
+	"\x06lowest\x18\b \x01(\v2\x16.kinegate.v1.ThresholdR\x06lowest\x12=\n" +
+	"\x1blowest_nucleon_momentum_gev\x18\t \x01(\x01R\x18lowestNucleonMomentumGev\x120\n" +
+	"\ahighest\x18\n" +
+	" \x01(\v2\x16.kinegate.v1.ThresholdR\ahighest\x122\n" +
+	"\babsolute\x18\v \x01(\v2\x16.kinegate.v1.ThresholdR\babsolute\x122\n" +
+	"\bcoherent\x18\f \x01(\v2\x16.kinegate.v1.ThresholdR\bcoherent\x12+\n" +
+	"\x11coherent_reaction\x18\r \x01(\tR\x10coherentReaction\"\\\n" +
 	"\x10SubsetMassLimits\x12\x1a\n" +
 	"\bproducts\x18\x01 \x03(\tR\bproducts\x12,\n" +
 	"\x04mass\x18\x02 \x01(\v2\x18.kinegate.v1.EnergyRangeR\x04mass\"\xba\x01\n" +
@@ -1187,15 +1244,11 @@ const file_kinegate_v1_reaction_proto_rawDesc = "" +
 	"\vstrangeness\x18\x03 \x01(\x05R\vstrangeness\x12\x1a\n" +
 	"\blightest\x18\x04 \x03(\tR\blightest\x12/\n" +
 	"\x11lightest_mass_gev\x18\x05 \x01(\x01H\x00R\x0flightestMassGev\x88\x01\x01B\x14\n" +
-	"\x12_lightest_mass_gev*\xde\x01\n" +
-	"\fChannelState\x12\x1d\n" +
-	"\x19CHANNEL_STATE_UNSPECIFIED\x10\x00\x12\x16\n" +
-	"\x12CHANNEL_STATE_OPEN\x10\x01\x12$\n" +
-	" CHANNEL_STATE_OPEN_THROUGH_WIDTH\x10\x02\x12\x1e\n" +
-	"\x1aCHANNEL_STATE_AT_THRESHOLD\x10\x03\x12\x18\n" +
-	"\x14CHANNEL_STATE_CLOSED\x10\x04\x12\x1a\n" +
-	"\x16CHANNEL_STATE_ON_POINT\x10\x05\x12\x1b\n" +
-	"\x17CHANNEL_STATE_OFF_POINT\x10\x06*k\n" +
+	"\x12_lightest_mass_gev*`\n" +
+	"\vLimitMasses\x12\x1c\n" +
+	"\x18LIMIT_MASSES_UNSPECIFIED\x10\x00\x12\x18\n" +
+	"\x14LIMIT_MASSES_NOMINAL\x10\x01\x12\x19\n" +
+	"\x15LIMIT_MASSES_LIGHTEST\x10\x02*k\n" +
 	"\x0fInitialParticle\x12 \n" +
 	"\x1cINITIAL_PARTICLE_UNSPECIFIED\x10\x00\x12\x19\n" +
 	"\x15INITIAL_PARTICLE_BEAM\x10\x01\x12\x1b\n" +
@@ -1205,9 +1258,12 @@ const file_kinegate_v1_reaction_proto_rawDesc = "" +
 	"\x17DECAY_CLASS_UNSPECIFIED\x10\x00\x12\x16\n" +
 	"\x12DECAY_CLASS_STRONG\x10\x01\x12\x1f\n" +
 	"\x1bDECAY_CLASS_ELECTROMAGNETIC\x10\x02\x12\x14\n" +
-	"\x10DECAY_CLASS_WEAK\x10\x032r\n" +
+	"\x10DECAY_CLASS_WEAK\x10\x032\x80\x03\n" +
 	"\x0fReactionService\x12_\n" +
-	"\x10DescribeReaction\x12$.kinegate.v1.DescribeReactionRequest\x1a%.kinegate.v1.DescribeReactionResponseB3Z1example.org/kinegate/proto/kinegate/v1;kinegatev1b\x06proto3"
+	"\x10DescribeReaction\x12$.kinegate.v1.DescribeReactionRequest\x1a%.kinegate.v1.DescribeReactionResponse\x12S\n" +
+	"\fSolveTwoBody\x12 .kinegate.v1.SolveTwoBodyRequest\x1a!.kinegate.v1.SolveTwoBodyResponse\x12_\n" +
+	"\x10ListOpenChannels\x12$.kinegate.v1.ListOpenChannelsRequest\x1a%.kinegate.v1.ListOpenChannelsResponse\x12V\n" +
+	"\rConvertMotion\x12!.kinegate.v1.ConvertMotionRequest\x1a\".kinegate.v1.ConvertMotionResponseB3Z1example.org/kinegate/proto/kinegate/v1;kinegatev1b\x06proto3"
 
 var (
 	file_kinegate_v1_reaction_proto_rawDescOnce sync.Once
@@ -1222,55 +1278,76 @@ func file_kinegate_v1_reaction_proto_rawDescGZIP() []byte {
 }
 
 var file_kinegate_v1_reaction_proto_enumTypes = make([]protoimpl.EnumInfo, 3)
-var file_kinegate_v1_reaction_proto_msgTypes = make([]protoimpl.MessageInfo, 9)
+var file_kinegate_v1_reaction_proto_msgTypes = make([]protoimpl.MessageInfo, 10)
 var file_kinegate_v1_reaction_proto_goTypes = []any{
-	(ChannelState)(0),                // 0: kinegate.v1.ChannelState
+	(LimitMasses)(0),                 // 0: kinegate.v1.LimitMasses
 	(InitialParticle)(0),             // 1: kinegate.v1.InitialParticle
 	(DecayClass)(0),                  // 2: kinegate.v1.DecayClass
 	(*DescribeReactionRequest)(nil),  // 3: kinegate.v1.DescribeReactionRequest
-	(*DescribeReactionResponse)(nil), // 4: kinegate.v1.DescribeReactionResponse
-	(*CentreOfMass)(nil),             // 5: kinegate.v1.CentreOfMass
-	(*Threshold)(nil),                // 6: kinegate.v1.Threshold
-	(*ProductLimits)(nil),            // 7: kinegate.v1.ProductLimits
-	(*SubsetMassLimits)(nil),         // 8: kinegate.v1.SubsetMassLimits
-	(*MomentumTransferLimits)(nil),   // 9: kinegate.v1.MomentumTransferLimits
-	(*DecayNote)(nil),                // 10: kinegate.v1.DecayNote
-	(*InclusiveRemainder)(nil),       // 11: kinegate.v1.InclusiveRemainder
-	(*Reaction)(nil),                 // 12: kinegate.v1.Reaction
-	(*InitialState)(nil),             // 13: kinegate.v1.InitialState
-	(*FourMomentum)(nil),             // 14: kinegate.v1.FourMomentum
-	(*EnergyRange)(nil),              // 15: kinegate.v1.EnergyRange
-	(*AngleRange)(nil),               // 16: kinegate.v1.AngleRange
+	(*MomentumTransferPair)(nil),     // 4: kinegate.v1.MomentumTransferPair
+	(*BoundNucleon)(nil),             // 5: kinegate.v1.BoundNucleon
+	(*DescribeReactionResponse)(nil), // 6: kinegate.v1.DescribeReactionResponse
+	(*PhaseSpaceVolume)(nil),         // 7: kinegate.v1.PhaseSpaceVolume
+	(*QuasiFree)(nil),                // 8: kinegate.v1.QuasiFree
+	(*SubsetMassLimits)(nil),         // 9: kinegate.v1.SubsetMassLimits
+	(*MomentumTransferLimits)(nil),   // 10: kinegate.v1.MomentumTransferLimits
+	(*DecayNote)(nil),                // 11: kinegate.v1.DecayNote
+	(*InclusiveRemainder)(nil),       // 12: kinegate.v1.InclusiveRemainder
+	(*Reaction)(nil),                 // 13: kinegate.v1.Reaction
+	(*InitialState)(nil),             // 14: kinegate.v1.InitialState
+	(ChannelState)(0),                // 15: kinegate.v1.ChannelState
+	(*CentreOfMass)(nil),             // 16: kinegate.v1.CentreOfMass
+	(*Threshold)(nil),                // 17: kinegate.v1.Threshold
+	(*ProductLimits)(nil),            // 18: kinegate.v1.ProductLimits
+	(*EnergyRange)(nil),              // 19: kinegate.v1.EnergyRange
+	(*SolveTwoBodyRequest)(nil),      // 20: kinegate.v1.SolveTwoBodyRequest
+	(*ListOpenChannelsRequest)(nil),  // 21: kinegate.v1.ListOpenChannelsRequest
+	(*ConvertMotionRequest)(nil),     // 22: kinegate.v1.ConvertMotionRequest
+	(*SolveTwoBodyResponse)(nil),     // 23: kinegate.v1.SolveTwoBodyResponse
+	(*ListOpenChannelsResponse)(nil), // 24: kinegate.v1.ListOpenChannelsResponse
+	(*ConvertMotionResponse)(nil),    // 25: kinegate.v1.ConvertMotionResponse
 }
 var file_kinegate_v1_reaction_proto_depIdxs = []int32{
-	12, // 0: kinegate.v1.DescribeReactionRequest.structured_reaction:type_name -> kinegate.v1.Reaction
-	13, // 1: kinegate.v1.DescribeReactionRequest.initial_state:type_name -> kinegate.v1.InitialState
-	12, // 2: kinegate.v1.DescribeReactionResponse.structured_reaction:type_name -> kinegate.v1.Reaction
-	0,  // 3: kinegate.v1.DescribeReactionResponse.state:type_name -> kinegate.v1.ChannelState
-	5,  // 4: kinegate.v1.DescribeReactionResponse.centre_of_mass:type_name -> kinegate.v1.CentreOfMass
-	6,  // 5: kinegate.v1.DescribeReactionResponse.threshold:type_name -> kinegate.v1.Threshold
-	6,  // 6: kinegate.v1.DescribeReactionResponse.lightest_threshold:type_name -> kinegate.v1.Threshold
-	7,  // 7: kinegate.v1.DescribeReactionResponse.products:type_name -> kinegate.v1.ProductLimits
-	8,  // 8: kinegate.v1.DescribeReactionResponse.subset_masses:type_name -> kinegate.v1.SubsetMassLimits
-	9,  // 9: kinegate.v1.DescribeReactionResponse.momentum_transfers:type_name -> kinegate.v1.MomentumTransferLimits
-	10, // 10: kinegate.v1.DescribeReactionResponse.decays:type_name -> kinegate.v1.DecayNote
-	11, // 11: kinegate.v1.DescribeReactionResponse.inclusive:type_name -> kinegate.v1.InclusiveRemainder
-	14, // 12: kinegate.v1.CentreOfMass.total:type_name -> kinegate.v1.FourMomentum
-	15, // 13: kinegate.v1.ProductLimits.centre_of_mass_energy:type_name -> kinegate.v1.EnergyRange
-	15, // 14: kinegate.v1.ProductLimits.centre_of_mass_momentum:type_name -> kinegate.v1.EnergyRange
-	15, // 15: kinegate.v1.ProductLimits.laboratory_energy:type_name -> kinegate.v1.EnergyRange
-	15, // 16: kinegate.v1.ProductLimits.laboratory_momentum:type_name -> kinegate.v1.EnergyRange
-	16, // 17: kinegate.v1.ProductLimits.laboratory_angle:type_name -> kinegate.v1.AngleRange
-	15, // 18: kinegate.v1.SubsetMassLimits.mass:type_name -> kinegate.v1.EnergyRange
-	1,  // 19: kinegate.v1.MomentumTransferLimits.initial:type_name -> kinegate.v1.InitialParticle
-	2,  // 20: kinegate.v1.DecayNote.decay_class:type_name -> kinegate.v1.DecayClass
-	3,  // 21: kinegate.v1.ReactionService.DescribeReaction:input_type -> kinegate.v1.DescribeReactionRequest
-	4,  // 22: kinegate.v1.ReactionService.DescribeReaction:output_type -> kinegate.v1.DescribeReactionResponse
-	22, // [22:23] is the sub-list for method output_type
-	21, // [21:22] is the sub-list for method input_type
-	21, // [21:21] is the sub-list for extension type_name
-	21, // [21:21] is the sub-list for extension extendee
-	0,  // [0:21] is the sub-list for field type_name
+	13, // 0: kinegate.v1.DescribeReactionRequest.structured_reaction:type_name -> kinegate.v1.Reaction
+	14, // 1: kinegate.v1.DescribeReactionRequest.initial_state:type_name -> kinegate.v1.InitialState
+	4,  // 2: kinegate.v1.DescribeReactionRequest.momentum_transfers:type_name -> kinegate.v1.MomentumTransferPair
+	5,  // 3: kinegate.v1.DescribeReactionRequest.bound_nucleon:type_name -> kinegate.v1.BoundNucleon
+	1,  // 4: kinegate.v1.MomentumTransferPair.initial:type_name -> kinegate.v1.InitialParticle
+	13, // 5: kinegate.v1.DescribeReactionResponse.structured_reaction:type_name -> kinegate.v1.Reaction
+	15, // 6: kinegate.v1.DescribeReactionResponse.state:type_name -> kinegate.v1.ChannelState
+	16, // 7: kinegate.v1.DescribeReactionResponse.centre_of_mass:type_name -> kinegate.v1.CentreOfMass
+	17, // 8: kinegate.v1.DescribeReactionResponse.threshold:type_name -> kinegate.v1.Threshold
+	17, // 9: kinegate.v1.DescribeReactionResponse.lightest_threshold:type_name -> kinegate.v1.Threshold
+	18, // 10: kinegate.v1.DescribeReactionResponse.products:type_name -> kinegate.v1.ProductLimits
+	9,  // 11: kinegate.v1.DescribeReactionResponse.subset_masses:type_name -> kinegate.v1.SubsetMassLimits
+	10, // 12: kinegate.v1.DescribeReactionResponse.momentum_transfers:type_name -> kinegate.v1.MomentumTransferLimits
+	11, // 13: kinegate.v1.DescribeReactionResponse.decays:type_name -> kinegate.v1.DecayNote
+	12, // 14: kinegate.v1.DescribeReactionResponse.inclusive:type_name -> kinegate.v1.InclusiveRemainder
+	0,  // 15: kinegate.v1.DescribeReactionResponse.limit_masses:type_name -> kinegate.v1.LimitMasses
+	7,  // 16: kinegate.v1.DescribeReactionResponse.phase_space_volume:type_name -> kinegate.v1.PhaseSpaceVolume
+	8,  // 17: kinegate.v1.DescribeReactionResponse.quasi_free:type_name -> kinegate.v1.QuasiFree
+	15, // 18: kinegate.v1.QuasiFree.state:type_name -> kinegate.v1.ChannelState
+	17, // 19: kinegate.v1.QuasiFree.at_rest:type_name -> kinegate.v1.Threshold
+	17, // 20: kinegate.v1.QuasiFree.lowest:type_name -> kinegate.v1.Threshold
+	17, // 21: kinegate.v1.QuasiFree.highest:type_name -> kinegate.v1.Threshold
+	17, // 22: kinegate.v1.QuasiFree.absolute:type_name -> kinegate.v1.Threshold
+	17, // 23: kinegate.v1.QuasiFree.coherent:type_name -> kinegate.v1.Threshold
+	19, // 24: kinegate.v1.SubsetMassLimits.mass:type_name -> kinegate.v1.EnergyRange
+	1,  // 25: kinegate.v1.MomentumTransferLimits.initial:type_name -> kinegate.v1.InitialParticle
+	2,  // 26: kinegate.v1.DecayNote.decay_class:type_name -> kinegate.v1.DecayClass
+	3,  // 27: kinegate.v1.ReactionService.DescribeReaction:input_type -> kinegate.v1.DescribeReactionRequest
+	20, // 28: kinegate.v1.ReactionService.SolveTwoBody:input_type -> kinegate.v1.SolveTwoBodyRequest
+	21, // 29: kinegate.v1.ReactionService.ListOpenChannels:input_type -> kinegate.v1.ListOpenChannelsRequest
+	22, // 30: kinegate.v1.ReactionService.ConvertMotion:input_type -> kinegate.v1.ConvertMotionRequest
+	6,  // 31: kinegate.v1.ReactionService.DescribeReaction:output_type -> kinegate.v1.DescribeReactionResponse
+	23, // 32: kinegate.v1.ReactionService.SolveTwoBody:output_type -> kinegate.v1.SolveTwoBodyResponse
+	24, // 33: kinegate.v1.ReactionService.ListOpenChannels:output_type -> kinegate.v1.ListOpenChannelsResponse
+	25, // 34: kinegate.v1.ReactionService.ConvertMotion:output_type -> kinegate.v1.ConvertMotionResponse
+	31, // [31:35] is the sub-list for method output_type
+	27, // [27:31] is the sub-list for method input_type
+	27, // [27:27] is the sub-list for extension type_name
+	27, // [27:27] is the sub-list for extension extendee
+	0,  // [0:27] is the sub-list for field type_name
 }
 
 func init() { file_kinegate_v1_reaction_proto_init() }
@@ -1278,22 +1355,24 @@ func file_kinegate_v1_reaction_proto_init() {
 	if File_kinegate_v1_reaction_proto != nil {
 		return
 	}
+	file_kinegate_v1_channel_proto_init()
+	file_kinegate_v1_channels_proto_init()
 	file_kinegate_v1_kinematics_proto_init()
+	file_kinegate_v1_motion_proto_init()
+	file_kinegate_v1_twobody_proto_init()
 	file_kinegate_v1_reaction_proto_msgTypes[0].OneofWrappers = []any{
 		(*DescribeReactionRequest_Reaction)(nil),
 		(*DescribeReactionRequest_StructuredReaction)(nil),
 	}
-	file_kinegate_v1_reaction_proto_msgTypes[1].OneofWrappers = []any{}
-	file_kinegate_v1_reaction_proto_msgTypes[2].OneofWrappers = []any{}
 	file_kinegate_v1_reaction_proto_msgTypes[3].OneofWrappers = []any{}
-	file_kinegate_v1_reaction_proto_msgTypes[8].OneofWrappers = []any{}
+	file_kinegate_v1_reaction_proto_msgTypes[9].OneofWrappers = []any{}
 	type x struct{}
 	out := protoimpl.TypeBuilder{
 		File: protoimpl.DescBuilder{
 			GoPackagePath: reflect.TypeOf(x{}).PkgPath(),
 			RawDescriptor: unsafe.Slice(unsafe.StringData(file_kinegate_v1_reaction_proto_rawDesc), len(file_kinegate_v1_reaction_proto_rawDesc)),
 			NumEnums:      3,
-			NumMessages:   9,
+			NumMessages:   10,
 			NumExtensions: 0,
 			NumServices:   1,
 		},

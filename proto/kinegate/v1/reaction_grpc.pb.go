@@ -23,6 +23,9 @@ const _ = grpc.SupportPackageIsVersion9
 
 const (
 	ReactionService_DescribeReaction_FullMethodName = "/kinegate.v1.ReactionService/DescribeReaction"
+	ReactionService_SolveTwoBody_FullMethodName     = "/kinegate.v1.ReactionService/SolveTwoBody"
+	ReactionService_ListOpenChannels_FullMethodName = "/kinegate.v1.ReactionService/ListOpenChannels"
+	ReactionService_ConvertMotion_FullMethodName    = "/kinegate.v1.ReactionService/ConvertMotion"
 )
 
 // ReactionServiceClient is the client API for ReactionService service.
@@ -35,6 +38,19 @@ type ReactionServiceClient interface {
 	// threshold it is, and where its products can go. A closed channel is an
 	// answer, not an error; a broken conservation law is INVALID_ARGUMENT.
 	DescribeReaction(ctx context.Context, in *DescribeReactionRequest, opts ...grpc.CallOption) (*DescribeReactionResponse, error)
+	// SolveTwoBody says where both products of a two-body reaction go when one of
+	// them has given values of one variable, such as laboratory angles: every
+	// branch, in both frames, with the ratios of solid angles. A closed channel and
+	// a value that no direction leads to are answers, not errors.
+	SolveTwoBody(ctx context.Context, in *SolveTwoBodyRequest, opts ...grpc.CallOption) (*SolveTwoBodyResponse, error)
+	// ListOpenChannels lists, page by page, every final state of up to five bodies
+	// that the conservation laws allow and the energy reaches with nominal masses,
+	// and the one that opens next. The work is bounded; the reply says up to how
+	// many bodies the list is complete.
+	ListOpenChannels(ctx context.Context, in *ListOpenChannelsRequest, opts ...grpc.CallOption) (*ListOpenChannelsResponse, error)
+	// ConvertMotion turns one quantity of a particle's motion into all others, and
+	// gives times of flight and Cherenkov angles.
+	ConvertMotion(ctx context.Context, in *ConvertMotionRequest, opts ...grpc.CallOption) (*ConvertMotionResponse, error)
 }
 
 type reactionServiceClient struct {
@@ -55,6 +71,36 @@ func (c *reactionServiceClient) DescribeReaction(ctx context.Context, in *Descri
 	return out, nil
 }
 
+func (c *reactionServiceClient) SolveTwoBody(ctx context.Context, in *SolveTwoBodyRequest, opts ...grpc.CallOption) (*SolveTwoBodyResponse, error) {
+	cOpts := append([]grpc.CallOption{grpc.StaticMethod()}, opts...)
+	out := new(SolveTwoBodyResponse)
+	err := c.cc.Invoke(ctx, ReactionService_SolveTwoBody_FullMethodName, in, out, cOpts...)
+	if err != nil {
+		return nil, err
+	}
+	return out, nil
+}
+
+func (c *reactionServiceClient) ListOpenChannels(ctx context.Context, in *ListOpenChannelsRequest, opts ...grpc.CallOption) (*ListOpenChannelsResponse, error) {
+	cOpts := append([]grpc.CallOption{grpc.StaticMethod()}, opts...)
+	out := new(ListOpenChannelsResponse)
+	err := c.cc.Invoke(ctx, ReactionService_ListOpenChannels_FullMethodName, in, out, cOpts...)
+	if err != nil {
+		return nil, err
+	}
+	return out, nil
+}
+
+func (c *reactionServiceClient) ConvertMotion(ctx context.Context, in *ConvertMotionRequest, opts ...grpc.CallOption) (*ConvertMotionResponse, error) {
+	cOpts := append([]grpc.CallOption{grpc.StaticMethod()}, opts...)
+	out := new(ConvertMotionResponse)
+	err := c.cc.Invoke(ctx, ReactionService_ConvertMotion_FullMethodName, in, out, cOpts...)
+	if err != nil {
+		return nil, err
+	}
+	return out, nil
+}
+
 // ReactionServiceServer is the server API for ReactionService service.
 // All implementations must embed UnimplementedReactionServiceServer
 // for forward compatibility.
@@ -65,6 +111,19 @@ type ReactionServiceServer interface {
 	// threshold it is, and where its products can go. A closed channel is an
 	// answer, not an error; a broken conservation law is INVALID_ARGUMENT.
 	DescribeReaction(context.Context, *DescribeReactionRequest) (*DescribeReactionResponse, error)
+	// SolveTwoBody says where both products of a two-body reaction go when one of
+	// them has given values of one variable, such as laboratory angles: every
+	// branch, in both frames, with the ratios of solid angles. A closed channel and
+	// a value that no direction leads to are answers, not errors.
+	SolveTwoBody(context.Context, *SolveTwoBodyRequest) (*SolveTwoBodyResponse, error)
+	// ListOpenChannels lists, page by page, every final state of up to five bodies
+	// that the conservation laws allow and the energy reaches with nominal masses,
+	// and the one that opens next. The work is bounded; the reply says up to how
+	// many bodies the list is complete.
+	ListOpenChannels(context.Context, *ListOpenChannelsRequest) (*ListOpenChannelsResponse, error)
+	// ConvertMotion turns one quantity of a particle's motion into all others, and
+	// gives times of flight and Cherenkov angles.
+	ConvertMotion(context.Context, *ConvertMotionRequest) (*ConvertMotionResponse, error)
 	mustEmbedUnimplementedReactionServiceServer()
 }
 
@@ -77,6 +136,15 @@ type UnimplementedReactionServiceServer struct{}
 
 func (UnimplementedReactionServiceServer) DescribeReaction(context.Context, *DescribeReactionRequest) (*DescribeReactionResponse, error) {
 	return nil, status.Error(codes.Unimplemented, "method DescribeReaction not implemented")
+}
+func (UnimplementedReactionServiceServer) SolveTwoBody(context.Context, *SolveTwoBodyRequest) (*SolveTwoBodyResponse, error) {
+	return nil, status.Error(codes.Unimplemented, "method SolveTwoBody not implemented")
+}
+func (UnimplementedReactionServiceServer) ListOpenChannels(context.Context, *ListOpenChannelsRequest) (*ListOpenChannelsResponse, error) {
+	return nil, status.Error(codes.Unimplemented, "method ListOpenChannels not implemented")
+}
+func (UnimplementedReactionServiceServer) ConvertMotion(context.Context, *ConvertMotionRequest) (*ConvertMotionResponse, error) {
+	return nil, status.Error(codes.Unimplemented, "method ConvertMotion not implemented")
 }
 func (UnimplementedReactionServiceServer) mustEmbedUnimplementedReactionServiceServer() {}
 func (UnimplementedReactionServiceServer) testEmbeddedByValue()                         {}
@@ -117,6 +185,60 @@ func _ReactionService_DescribeReaction_Handler(srv interface{}, ctx context.Cont
 	return interceptor(ctx, in, info, handler)
 }
 
+func _ReactionService_SolveTwoBody_Handler(srv interface{}, ctx context.Context, dec func(interface{}) error, interceptor grpc.UnaryServerInterceptor) (interface{}, error) {
+	in := new(SolveTwoBodyRequest)
+	if err := dec(in); err != nil {
+		return nil, err
+	}
+	if interceptor == nil {
+		return srv.(ReactionServiceServer).SolveTwoBody(ctx, in)
+	}
+	info := &grpc.UnaryServerInfo{
+		Server:     srv,
+		FullMethod: ReactionService_SolveTwoBody_FullMethodName,
+	}
+	handler := func(ctx context.Context, req interface{}) (interface{}, error) {
+		return srv.(ReactionServiceServer).SolveTwoBody(ctx, req.(*SolveTwoBodyRequest))
+	}
+	return interceptor(ctx, in, info, handler)
+}
+
+func _ReactionService_ListOpenChannels_Handler(srv interface{}, ctx context.Context, dec func(interface{}) error, interceptor grpc.UnaryServerInterceptor) (interface{}, error) {
+	in := new(ListOpenChannelsRequest)
+	if err := dec(in); err != nil {
+		return nil, err
+	}
+	if interceptor == nil {
+		return srv.(ReactionServiceServer).ListOpenChannels(ctx, in)
+	}
+	info := &grpc.UnaryServerInfo{
+		Server:     srv,
+		FullMethod: ReactionService_ListOpenChannels_FullMethodName,
+	}
+	handler := func(ctx context.Context, req interface{}) (interface{}, error) {
+		return srv.(ReactionServiceServer).ListOpenChannels(ctx, req.(*ListOpenChannelsRequest))
+	}
+	return interceptor(ctx, in, info, handler)
+}
+
+func _ReactionService_ConvertMotion_Handler(srv interface{}, ctx context.Context, dec func(interface{}) error, interceptor grpc.UnaryServerInterceptor) (interface{}, error) {
+	in := new(ConvertMotionRequest)
+	if err := dec(in); err != nil {
+		return nil, err
+	}
+	if interceptor == nil {
+		return srv.(ReactionServiceServer).ConvertMotion(ctx, in)
+	}
+	info := &grpc.UnaryServerInfo{
+		Server:     srv,
+		FullMethod: ReactionService_ConvertMotion_FullMethodName,
+	}
+	handler := func(ctx context.Context, req interface{}) (interface{}, error) {
+		return srv.(ReactionServiceServer).ConvertMotion(ctx, req.(*ConvertMotionRequest))
+	}
+	return interceptor(ctx, in, info, handler)
+}
+
 // ReactionService_ServiceDesc is the grpc.ServiceDesc for ReactionService service.
 // It's only intended for direct use with grpc.RegisterService,
 // and not to be introspected or modified (even as a copy)
@@ -127,6 +249,18 @@ var ReactionService_ServiceDesc = grpc.ServiceDesc{
 		{
 			MethodName: "DescribeReaction",
 			Handler:    _ReactionService_DescribeReaction_Handler,
+		},
+		{
+			MethodName: "SolveTwoBody",
+			Handler:    _ReactionService_SolveTwoBody_Handler,
+		},
+		{
+			MethodName: "ListOpenChannels",
+			Handler:    _ReactionService_ListOpenChannels_Handler,
+		},
+		{
+			MethodName: "ConvertMotion",
+			Handler:    _ReactionService_ConvertMotion_Handler,
 		},
 	},
 	Streams:  []grpc.StreamDesc{},
