@@ -1,0 +1,250 @@
+package constraint
+
+import (
+	"math"
+
+	"example.org/kinegate/kinematics/momentum"
+)
+
+// Fitter fits one event at a time for a Problem. It is not safe for use by several
+// workers at once; each has its own. Its methods allocate nothing.
+type Fitter struct {
+	// Measurements has one entry per object of the Spec; the caller fills it, and the
+	// Vertex, before each fit. Values of objects that are not measured do not matter.
+	Measurements []Measurement
+	Vertex       Vertex
+
+	problem *Problem
+	bodies  []body
+	// x are the unknowns from the measured values in standard deviations, or from the
+	// start in units for what is not measured; step is the way to the next, before
+	// where the last step began.
+	x, before, step []float64
+	// columns are the derivatives of each variable's four-momentum.
+	columns []vector
+	// residual are the constraints, sigma their standard deviations, and multiplier
+	// their multipliers.
+	residual, sigma, multiplier, next []float64
+	// initial are the residuals before the first step.
+	initial []float64
+	// sums are the two sides of the mass constraints.
+	sums [][2]vector
+	// pulls are the derivatives of the constraints times multipliers in each
+	// object's four-momentum.
+	pulls []vector
+	// total is the sum of all energies, the scale of the rounding.
+	total float64
+	// vertex is where the vertex stands and spreadZ the length of one unit of its
+	// variable.
+	vertex  [3]float64
+	spreadZ float64
+
+	system system
+	// penalty is the weight of the squared residuals in the merit.
+	penalty float64
+	// propagated says that system holds the covariance at the solution.
+	propagated bool
+	result     Result
+}
+
+// NewFitter returns a fitter with the masses of the specification.
+func (p *Problem) NewFitter() *Fitter {
+	n, m := p.variables, p.constraints()
+	f := &Fitter{
+		Measurements: make([]Measurement, len(p.parts)),
+		problem:      p,
+		bodies:       make([]body, len(p.parts)),
+		x:            make([]float64, n),
+		before:       make([]float64, n),
+		step:         make([]float64, n),
+		columns:      make([]vector, n),
+		residual:     make([]float64, m),
+		initial:      make([]float64, m),
+		sigma:        make([]float64, m),
+		multiplier:   make([]float64, m),
+		next:         make([]float64, m),
+		sums:         make([][2]vector, len(p.masses)),
+		pulls:        make([]vector, len(p.parts)),
+		system:       newSystem(n + m),
+	}
+	for i := range f.bodies {
+		f.bodies[i].part = &p.parts[i]
+		f.Measurements[i].MassGeV = p.parts[i].mass
+	}
+	return f
+}
+
+// load takes the measurements.
+func (f *Fitter) load() bool {
+	clear(f.x)
+	f.propagated = false
+	for i := range f.bodies {
+		if !f.bodies[i].load(&f.Measurements[i]) {
+			return false
+		}
+	}
+	v := f.Vertex.Position
+	f.vertex = [3]float64{v.X, v.Y, v.Z}
+	f.spreadZ = 1
+	if f.problem.vertex == VertexMeasured {
+		f.spreadZ = f.Vertex.SigmaZ
+	}
+	return finite(v.X) && finite(v.Y) && finite(v.Z) && f.spreadZ >= 0 && f.spreadZ <= maxMagnitude
+}
+
+// evaluate computes all momenta, their derivatives and the constraints at x.
+func (f *Fitter) evaluate() {
+	p := f.problem
+	v := f.vertex
+	if p.z != none {
+		v[2] += float64(f.spreadZ * f.x[p.z])
+	}
+	var sum vector
+	total := math.Abs(p.known[3])
+	for i := range f.bodies {
+		b := &f.bodies[i]
+		b.place(f.x)
+		b.evaluate(&v, f.columns)
+		sum.add(b.sign, &b.momentum)
+		total += math.Abs(b.momentum[3])
+	}
+	f.total = total
+	sum.add(-1, &p.known)
+	for k, c := range p.balance {
+		f.residual[k] = c.of(&sum)
+	}
+	for k := range p.masses {
+		row, sums := &p.masses[k], &f.sums[k]
+		*sums = [2]vector{}
+		for _, i := range row.left.objects {
+			sums[0].add(1, &f.bodies[i].momentum)
+		}
+		for _, i := range row.right.objects {
+			sums[1].add(1, &f.bodies[i].momentum)
+		}
+		f.residual[len(p.balance)+k] = sums[0].square() - sums[1].square() - row.square
+	}
+}
+
+// of returns the component of a vector.
+func (c component) of(v *vector) float64 {
+	switch c {
+	case balanceX:
+		return v[0]
+	case balanceY:
+		return v[1]
+	case balanceZ:
+		return v[2]
+	case balanceEnergy:
+		return v[3]
+	case balanceMinus:
+		return v[3] - v[2]
+	case balancePlus:
+		return v[3] + v[2]
+	}
+	return math.NaN()
+}
+
+// square returns the mass squared.
+func (c *vector) square() float64 {
+	return float64((c[3]-c[2])*(c[3]+c[2])) - float64(c[0]*c[0]) - float64(c[1]*c[1])
+}
+
+// pull sets the covector of each object: the derivative of lambda'f in its
+// four-momentum.
+func (f *Fitter) pull(multiplier []float64) {
+	p := f.problem
+	var balance vector
+	for k, c := range p.balance {
+		l := multiplier[k]
+		switch c {
+		case balanceX:
+			balance[0] += l
+		case balanceY:
+			balance[1] += l
+		case balanceZ:
+			balance[2] += l
+		case balanceEnergy:
+			balance[3] += l
+		case balanceMinus:
+			balance[2] -= l
+			balance[3] += l
+		case balancePlus:
+			balance[2] += l
+			balance[3] += l
+		}
+	}
+	for i := range f.pulls {
+		f.pulls[i] = vector{}
+		f.pulls[i].add(p.parts[i].sign, &balance)
+	}
+	for k := range p.masses {
+		l := multiplier[len(p.balance)+k]
+		left, right := f.sums[k][0].lowered(2*l), f.sums[k][1].lowered(-2*l)
+		for _, i := range p.masses[k].left.objects {
+			f.pulls[i].add(1, &left)
+		}
+		for _, i := range p.masses[k].right.objects {
+			f.pulls[i].add(1, &right)
+		}
+	}
+}
+
+// stationarity returns the largest component of the gradient of the Lagrangian in
+// units of standard deviations. An unmeasured parameter counts in units of the
+// change that moves the constraints by one standard deviation. The pulls are set.
+func (f *Fitter) stationarity() float64 {
+	p := f.problem
+	largest := 0.0
+	for i := range f.bodies {
+		part := &p.parts[i]
+		for _, v := range part.vars[:part.count] {
+			g := float64(p.weight[v]*f.x[v]) + f.pulls[i].on(&f.columns[v])
+			largest = worse(largest, g*f.system.unit(v))
+		}
+	}
+	if p.z != none {
+		g := float64(p.weight[p.z] * f.x[p.z])
+		for i := range f.bodies {
+			if f.bodies[i].repointed {
+				g += float64(f.spreadZ * f.pulls[i].on(&f.bodies[i].alongZ))
+			}
+		}
+		largest = worse(largest, g*f.system.unit(p.z))
+	}
+	return largest
+}
+
+// worse returns the larger magnitude, and NaN if there is one.
+func worse(largest, v float64) float64 {
+	if v = math.Abs(v); v <= largest {
+		return largest
+	}
+	return v
+}
+
+// violation returns the largest constraint in units of standard deviations, after
+// what rounding may leave is taken off, and how much of it there is.
+func (f *Fitter) violation() float64 {
+	largest := 0.0
+	for k, r := range f.residual {
+		r = math.Max(math.Abs(r)-f.rounding(k), 0)
+		largest = worse(largest, r/f.sigma[k])
+	}
+	return largest
+}
+
+// rounding bounds what is left of constraint k by the rounding of its terms: an energy
+// is good to about 4 x 2^-53, a square of a sum to twice that and its own roundings.
+func (f *Fitter) rounding(k int) float64 {
+	if k < len(f.problem.balance) {
+		return 0x1p-50 * f.total
+	}
+	return 0x1p-49 * f.total * f.total
+}
+
+// Momentum returns the fitted four-momentum of an object.
+func (f *Fitter) Momentum(object int) momentum.Four {
+	v := &f.bodies[object].momentum
+	return momentum.Four{P: momentum.Three{X: v[0], Y: v[1], Z: v[2]}, E: v[3]}
+}
