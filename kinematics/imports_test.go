@@ -40,6 +40,7 @@ var homes = map[string][]string{
 	"github.com/prometheus":       {"service/telemetry", "service/server", "service/cmd"},
 	"github.com/rs/zerolog":       {"service/telemetry", "service/server", "service/cmd"},
 	"github.com/spf13":            {"service/cmd"},
+	"golang.org/x/net":            {}, // Tests send raw frames.
 	"golang.org/x/term":           {"service/cmd"},
 	"golang.org/x/sys":            {"service"},
 	"go.yaml.in/yaml":             {"service"},
@@ -263,6 +264,8 @@ func TestImportDirectionSeesOffences(t *testing.T) {
 		{"service/cmd/kinegate", "clients/go", false, false},
 		{"service/cmd/kinegate", "github.com/spf13/cobra", false, false},
 		{"service/server", "github.com/spf13/cobra", false, true},
+		{"service/server", "golang.org/x/net/http2", false, true},
+		{"service/server", "golang.org/x/net/http2", true, false},
 		{"clients/go", "proto/kinegate/v1", false, false},
 		{"clients/go", "kinematics/num", false, true},
 		{"clients/go", "service/server", false, true},

@@ -65,7 +65,8 @@ func KleinNishinaDifferential(k, cosTheta float64) float64 {
 func kleinNishina(p, shift, cosTheta float64) float64 {
 	// p*shift is 1 - P, at most 1, so that the square cannot overflow.
 	loss := p * shift
-	return p * float64(float64(p*math.FMA(cosTheta, cosTheta, 1))+float64(loss*shift*p)) / 2
+	onePlusSquare := math.FMA(cosTheta, cosTheta, 1)
+	return p * float64(float64(p*onePlusSquare)+float64(loss*shift*p)) / 2
 }
 
 // KleinNishinaTotal returns the total cross-section of Compton scattering over the
