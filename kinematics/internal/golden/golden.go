@@ -30,7 +30,7 @@ var update = flag.Bool("update", false, "rewrite the golden files (raise kinemat
 // preamble heads every golden file.
 const preamble = `# Digests of seeded computations, the same on every processor: section, values, SHA-256.
 # Never edit this file to fit a change. A change of bits raises kinematics.NumericsVersion;
-# then "go test -run TestGolden ./kinematics/... -update" rewrites it.
+# then ".ci/golden --update" rewrites it.
 `
 
 // Digest collects the values of one computation, in sections that are compared one by one, so
