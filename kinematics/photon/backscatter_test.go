@@ -39,6 +39,9 @@ func TestBackscatterSpectrumIntegratesToTheTotal(t *testing.T) {
 			}
 			sum := (quad.Fixed(f, 0, 0.9, 200, quad.Legendre{}, 0) + quad.Fixed(f, 0.9, 1, 200, quad.Legendre{}, 0)) * (high - low)
 			near(t, "total", sum, b.TotalBarn(), 1e-11)
+			moment := func(h float64) float64 { return (low + h*(high-low)) * f(h) }
+			mean := (quad.Fixed(moment, 0, 0.9, 200, quad.Legendre{}, 0) + quad.Fixed(moment, 0.9, 1, 200, quad.Legendre{}, 0)) * (high - low)
+			near(t, "mean", mean/b.TotalBarn(), b.MeanEnergy(), 1e-11)
 			near(t, "whole", must(b.Fraction(0, 2*high)), 1, 1e-14) // quadrature against the closed total
 			near(t, "whole angle", must(b.FractionWithin(math.Pi)), 1, 1e-14)
 			half := low + 0.3*(high-low)

@@ -211,3 +211,23 @@ func TestPairThresholds(t *testing.T) {
 	near(t, "electron", must(photon.FieldPairThreshold(m, m)), 4*m, 0)
 	near(t, "heavy", must(photon.FieldPairThreshold(m, 1e30)), 2*m, 0)
 }
+
+func TestPairEnergyFromSqrtS(t *testing.T) {
+	const m = 0.25
+	for _, v := range excesses() {
+		if v > 1e90 {
+			continue
+		}
+		sqrtS := 2 * m * math.Sqrt(1+v)
+		e := must(photon.PairEnergyFromSqrtS(sqrtS, m))
+		// Of exactly this double: (sqrt(s) - 2m)(sqrt(s) + 2m) has no loss, as m is a power of 2.
+		near(t, "excess", e.Excess(), (sqrtS-2*m)*(sqrtS+2*m)/(4*m*m), 3e-16)
+	}
+	if at := must(photon.PairEnergyFromSqrtS(2*0.1056583755, 0.1056583755)); at.Side() != num.At {
+		t.Errorf("twice the mass is %v the threshold", at.Side())
+	}
+	for _, bad := range []float64{-1, math.NaN(), math.Inf(1), 1e99} {
+		_, err := photon.PairEnergyFromSqrtS(bad, m)
+		refused(t, err, fault.Invalid, "sqrt_s_gev")
+	}
+}

@@ -46,6 +46,31 @@ func PairEnergyFromExcess(excess float64) (PairEnergy, error) {
 	return PairEnergy{num.Sum2(1, excess), num.FromFloat(excess)}, nil
 }
 
+// PairEnergyFromSqrtS returns the energy sqrtSGeV in the centre of mass, against the
+// threshold of a pair of mass massGeV each:
+//
+//	s/(4 m^2) - 1 = ((sqrt(s) - 2 m)/(2 m))(sqrt(s)/(2 m) + 1)
+//
+// taken of exactly these doubles. Domain: sqrtSGeV >= 0, massGeV > 0, both finite, and
+// sqrt(s)/(2 m) <= 1e50; an excess between -1e-250 and 1e-250 counts as 0.
+func PairEnergyFromSqrtS(sqrtSGeV, massGeV float64) (PairEnergy, error) {
+	const op = "photon.PairEnergyFromSqrtS"
+	if err := first(notNegative(op, "sqrt_s_gev", sqrtSGeV), positive(op, "mass_gev", massGeV)); err != nil {
+		return PairEnergy{}, err
+	}
+	half := sqrtSGeV / 2
+	above := num.Sum2(half, -massGeV).DivFloat(massGeV)
+	ratio := num.Quo2(half, massGeV)
+	if !(ratio.Hi <= 1e50) {
+		return PairEnergy{}, fault.Number("sqrt_s_gev", sqrtSGeV, "<= 2e50 masses").In(op)
+	}
+	excess := above.Mul(ratio.AddFloat(1))
+	if math.Abs(excess.Hi) < smallestExcess {
+		excess = num.DD{}
+	}
+	return PairEnergy{ratio.Square(), excess}, nil
+}
+
 // PairEnergyFromPhotons returns the energy of two photons whose directions differ by
 // angleRad (pi = head on), against the threshold of a pair of mass massGeV each:
 //
