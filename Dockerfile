@@ -22,4 +22,7 @@ FROM scratch
 COPY --from=build /out/kinegate /kinegate
 # A number, not a name: without /etc/passwd only a number can be checked to be no root.
 USER 65532:65532
+# Judge streams, other rpcs, plaintext health, metrics over HTTP. All four listen on loopback until
+# their addresses are set; beyond it the rpc listeners want TLS.
+EXPOSE 8470 8471 8472 8473
 ENTRYPOINT ["/kinegate"]
