@@ -13,6 +13,7 @@ type reactionService struct {
 	kinegatev1.UnsafeReactionServiceServer
 
 	table *particle.Table
+	texts reactionTexts
 	last  lastSearch
 }
 
@@ -20,12 +21,13 @@ type reactionService struct {
 func (s *reactionService) DescribeReaction(
 	_ context.Context, request *kinegatev1.DescribeReactionRequest,
 ) (*kinegatev1.DescribeReactionResponse, error) {
-	r, err := processForm{
+	parsed, err := s.texts.read(s.table, processForm{
 		name: "reaction", text: request.GetReaction(), structured: request.GetStructuredReaction(), unset: request.GetForm() == nil,
-	}.read(s.table)
+	})
 	if err != nil {
 		return nil, err
 	}
+	r := parsed.Reaction
 	f := &former{}
 	form := f.initialStateOf("initial_state", request.GetInitialState())
 	if err := f.faults.Err(); err != nil {
@@ -39,7 +41,7 @@ func (s *reactionService) DescribeReaction(
 	if err != nil {
 		return nil, form.describeFailure(err)
 	}
-	response := channelMessage(r, &channel)
+	response := channelMessage(parsed, &channel)
 	limitsOf(response, r, &channel, transfers, request.GetWithPhaseSpaceVolume())
 	if response.QuasiFree, err = quasiFree(s.table, r, &form.state, request.GetBoundNucleon()); err != nil {
 		return nil, err
@@ -49,15 +51,15 @@ func (s *reactionService) DescribeReaction(
 }
 
 // channelMessage converts what is known about a channel.
-func channelMessage(r *reaction.Reaction, c *reaction.Channel) *kinegatev1.DescribeReactionResponse {
+func channelMessage(r *parsedReaction, c *reaction.Channel) *kinegatev1.DescribeReactionResponse {
 	m := &kinegatev1.DescribeReactionResponse{
-		Reaction:           r.String(),
-		StructuredReaction: specMessage(r.Spec()),
+		Reaction:           r.text,
+		StructuredReaction: r.structured,
 		State:              stateMessage(c.State),
 		Frame:              c.Frame,
 		Remarks:            c.Remarks,
-		Decays:             decayNotes(r.Decays),
-		Inclusive:          remainderMessage(r.Remainder),
+		Decays:             r.decays,
+		Inclusive:          r.remainder,
 	}
 	oneBody := len(r.Top) == 1 && !r.Inclusive
 	found := !r.Inclusive || r.Remainder != nil && len(r.Remainder.Lightest) > 0

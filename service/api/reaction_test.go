@@ -153,3 +153,30 @@ func TestSelfTest(t *testing.T) {
 		t.Error(err)
 	}
 }
+
+// TestReactionTextsAreKept: a text is read once, within the bound, and a faulty one never.
+func TestReactionTextsAreKept(t *testing.T) {
+	table := newTestTable(t)
+	var k reactionTexts
+	read := func(text string) (*parsedReaction, error) {
+		return k.read(table, processForm{name: "reaction", text: text})
+	}
+	first, err := read("gamma p -> p pi0")
+	if err != nil {
+		t.Fatal(err)
+	}
+	if again, err := read("gamma p -> p pi0"); err != nil || again != first {
+		t.Errorf("read again: %v", err)
+	}
+	if _, err := read("gamma p -> p pi9"); err == nil || len(k.byText) != 1 {
+		t.Errorf("a faulty text: %v, %d kept", err, len(k.byText))
+	}
+	for i := range 3 * keptReactions {
+		if _, err := read("gamma p -> p pi0" + strings.Repeat(" ", i)); err != nil {
+			t.Fatal(err)
+		}
+		if len(k.byText) > keptReactions {
+			t.Fatalf("%d kept", len(k.byText))
+		}
+	}
+}

@@ -27,8 +27,9 @@ func (e *echo) DescribeReaction(context.Context, *kinegatev1.DescribeReactionReq
 }
 
 // BenchmarkDescribeReaction compares the median latency over loopback with that of a
-// bare echo of the same sizes; log lines go to a writer that discards them. Calls
-// alternate between the two, so that both see the same machine.
+// bare echo of the same sizes, and so does it for an echo behind all that stands around
+// a call; log lines go to a writer that discards them. Calls alternate between the
+// three, so that all see the same machine.
 func BenchmarkDescribeReaction(b *testing.B) {
 	log := telemetry.NewWriter(discard{})
 	defer log.Close()
@@ -56,9 +57,18 @@ func BenchmarkDescribeReaction(b *testing.B) {
 	go func() { _ = bare.Serve(l) }()
 	defer bare.Stop()
 	theirs := dial(l.Addr().String())
+	f := newFront(r.fronts[General].desk, 100, r.serverOptions(r.options.GeneralStreamWindow, r.options.GeneralConnectionWindow))
+	kinegatev1.RegisterReactionServiceServer(f, &echo{reply: reply})
+	fl, err := net.Listen("tcp", "127.0.0.1:0")
+	if err != nil {
+		b.Fatal(err)
+	}
+	go func() { _ = f.server.Serve(fl) }()
+	defer f.server.Stop()
+	layered := dial(fl.Addr().String())
 	took := map[kinegatev1.ReactionServiceClient][]time.Duration{}
 	for b.Loop() {
-		for _, client := range []kinegatev1.ReactionServiceClient{ours, theirs} {
+		for _, client := range []kinegatev1.ReactionServiceClient{ours, theirs, layered} {
 			begun := time.Now()
 			if _, err := client.DescribeReaction(b.Context(), request); err != nil {
 				b.Fatal(err)
@@ -71,6 +81,7 @@ func BenchmarkDescribeReaction(b *testing.B) {
 		return float64(d[len(d)/2])
 	}
 	b.ReportMetric(median(took[ours])/median(took[theirs]), "x-echo")
+	b.ReportMetric(median(took[layered])/median(took[theirs]), "layers-x-echo")
 	b.ReportMetric(median(took[ours])/1e3, "us-median")
 }
 
