@@ -8,6 +8,7 @@ import (
 	"encoding/binary"
 	"fmt"
 	"math"
+	"slices"
 )
 
 // Sizes of one entry in bytes.
@@ -32,8 +33,11 @@ func (e *LengthError) Error() string {
 }
 
 // Float64 encodes numbers.
-func Float64(xs []float64) []byte {
-	b := make([]byte, 0, sizeFloat64*len(xs))
+func Float64(xs []float64) []byte { return AppendFloat64([]byte{}, xs) }
+
+// AppendFloat64 appends the encoded numbers.
+func AppendFloat64(b []byte, xs []float64) []byte {
+	b = slices.Grow(b, sizeFloat64*len(xs))
 	for _, x := range xs {
 		b = binary.LittleEndian.AppendUint64(b, math.Float64bits(x))
 	}
@@ -41,8 +45,11 @@ func Float64(xs []float64) []byte {
 }
 
 // Int64 encodes whole numbers of 64 bits.
-func Int64(xs []int64) []byte {
-	b := make([]byte, 0, sizeInt64*len(xs))
+func Int64(xs []int64) []byte { return AppendInt64([]byte{}, xs) }
+
+// AppendInt64 appends the encoded whole numbers of 64 bits.
+func AppendInt64(b []byte, xs []int64) []byte {
+	b = slices.Grow(b, sizeInt64*len(xs))
 	for _, x := range xs {
 		b = binary.LittleEndian.AppendUint64(b, uint64(x)) //nolint:gosec // the bits are two's complement
 	}
@@ -50,8 +57,11 @@ func Int64(xs []int64) []byte {
 }
 
 // Int32 encodes whole numbers of 32 bits.
-func Int32(xs []int32) []byte {
-	b := make([]byte, 0, sizeInt32*len(xs))
+func Int32(xs []int32) []byte { return AppendInt32([]byte{}, xs) }
+
+// AppendInt32 appends the encoded whole numbers of 32 bits.
+func AppendInt32(b []byte, xs []int32) []byte {
+	b = slices.Grow(b, sizeInt32*len(xs))
 	for _, x := range xs {
 		b = binary.LittleEndian.AppendUint32(b, uint32(x)) //nolint:gosec // the bits are two's complement
 	}
@@ -59,8 +69,11 @@ func Int32(xs []int32) []byte {
 }
 
 // Int16 encodes whole numbers of 16 bits.
-func Int16(xs []int16) []byte {
-	b := make([]byte, 0, sizeInt16*len(xs))
+func Int16(xs []int16) []byte { return AppendInt16([]byte{}, xs) }
+
+// AppendInt16 appends the encoded whole numbers of 16 bits.
+func AppendInt16(b []byte, xs []int16) []byte {
+	b = slices.Grow(b, sizeInt16*len(xs))
 	for _, x := range xs {
 		b = binary.LittleEndian.AppendUint16(b, uint16(x)) //nolint:gosec // the bits are two's complement
 	}
@@ -68,61 +81,90 @@ func Int16(xs []int16) []byte {
 }
 
 // Uint8 encodes values of one byte, such as a status.
-func Uint8[T ~uint8](xs []T) []byte {
-	b := make([]byte, len(xs))
-	for i, x := range xs {
-		b[i] = byte(x)
+func Uint8[T ~uint8](xs []T) []byte { return AppendUint8([]byte{}, xs) }
+
+// AppendUint8 appends the encoded values of one byte.
+func AppendUint8[T ~uint8](b []byte, xs []T) []byte {
+	b = slices.Grow(b, len(xs))
+	for _, x := range xs {
+		b = append(b, byte(x))
 	}
 	return b
 }
 
 // Float64s decodes numbers.
-func Float64s(column []byte) ([]float64, error) {
-	n, err := entries(column, sizeFloat64)
-	xs := make([]float64, n)
-	for i := range xs {
-		xs[i] = math.Float64frombits(binary.LittleEndian.Uint64(column[sizeFloat64*i:]))
+func Float64s(column []byte) ([]float64, error) { return AppendFloat64s([]float64{}, column) }
+
+// AppendFloat64s appends the decoded numbers.
+func AppendFloat64s(xs []float64, column []byte) ([]float64, error) {
+	xs, tail, err := room(xs, column, sizeFloat64)
+	for i := range tail {
+		tail[i] = math.Float64frombits(binary.LittleEndian.Uint64(column))
+		column = column[sizeFloat64:]
 	}
 	return xs, err
 }
 
 // Int64s decodes whole numbers of 64 bits.
-func Int64s(column []byte) ([]int64, error) {
-	n, err := entries(column, sizeInt64)
-	xs := make([]int64, n)
-	for i := range xs {
-		xs[i] = int64(binary.LittleEndian.Uint64(column[sizeInt64*i:])) //nolint:gosec // the bits are two's complement
+func Int64s(column []byte) ([]int64, error) { return AppendInt64s([]int64{}, column) }
+
+// AppendInt64s appends the decoded whole numbers of 64 bits.
+func AppendInt64s(xs []int64, column []byte) ([]int64, error) {
+	xs, tail, err := room(xs, column, sizeInt64)
+	for i := range tail {
+		tail[i] = int64(binary.LittleEndian.Uint64(column)) //nolint:gosec // the bits are two's complement
+		column = column[sizeInt64:]
 	}
 	return xs, err
 }
 
 // Int32s decodes whole numbers of 32 bits.
-func Int32s(column []byte) ([]int32, error) {
-	n, err := entries(column, sizeInt32)
-	xs := make([]int32, n)
-	for i := range xs {
-		xs[i] = int32(binary.LittleEndian.Uint32(column[sizeInt32*i:])) //nolint:gosec // the bits are two's complement
+func Int32s(column []byte) ([]int32, error) { return AppendInt32s([]int32{}, column) }
+
+// AppendInt32s appends the decoded whole numbers of 32 bits.
+func AppendInt32s(xs []int32, column []byte) ([]int32, error) {
+	xs, tail, err := room(xs, column, sizeInt32)
+	for i := range tail {
+		tail[i] = int32(binary.LittleEndian.Uint32(column)) //nolint:gosec // the bits are two's complement
+		column = column[sizeInt32:]
 	}
 	return xs, err
 }
 
 // Int16s decodes whole numbers of 16 bits.
-func Int16s(column []byte) ([]int16, error) {
-	n, err := entries(column, sizeInt16)
-	xs := make([]int16, n)
-	for i := range xs {
-		xs[i] = int16(binary.LittleEndian.Uint16(column[sizeInt16*i:])) //nolint:gosec // the bits are two's complement
+func Int16s(column []byte) ([]int16, error) { return AppendInt16s([]int16{}, column) }
+
+// AppendInt16s appends the decoded whole numbers of 16 bits.
+func AppendInt16s(xs []int16, column []byte) ([]int16, error) {
+	xs, tail, err := room(xs, column, sizeInt16)
+	for i := range tail {
+		tail[i] = int16(binary.LittleEndian.Uint16(column)) //nolint:gosec // the bits are two's complement
+		column = column[sizeInt16:]
 	}
 	return xs, err
 }
 
 // Uint8s decodes values of one byte.
-func Uint8s[T ~uint8](column []byte) []T {
-	xs := make([]T, len(column))
-	for i, x := range column {
-		xs[i] = T(x)
+func Uint8s[T ~uint8](column []byte) []T { return AppendUint8s([]T{}, column) }
+
+// AppendUint8s appends the decoded values of one byte.
+func AppendUint8s[T ~uint8](xs []T, column []byte) []T {
+	xs, tail, _ := room(xs, column, 1)
+	for i := range tail {
+		tail[i] = T(column[i])
 	}
 	return xs
+}
+
+// room lengthens xs by the entries of a column, none where the length does not fit,
+// and returns it with that part of it.
+func room[T any](xs []T, column []byte, size int) (all, tail []T, err error) {
+	if len(column)%size != 0 {
+		return xs, nil, &LengthError{Bytes: len(column), Size: size}
+	}
+	n := len(column) / size
+	all = slices.Grow(xs, n)[:len(xs)+n]
+	return all, all[len(xs):], nil
 }
 
 // Bit reports bit i of a bit column, least significant bit of byte 0 first; false
@@ -131,12 +173,4 @@ func Bit(column []byte, i int) bool {
 	const bitsPerByte = 8
 	byteIndex := i / bitsPerByte
 	return i >= 0 && byteIndex < len(column) && column[byteIndex]>>(i%bitsPerByte)&1 == 1
-}
-
-// entries counts the entries of a column; none where the length does not fit.
-func entries(column []byte, size int) (int, error) {
-	if len(column)%size != 0 {
-		return 0, &LengthError{Bytes: len(column), Size: size}
-	}
-	return len(column) / size, nil
 }

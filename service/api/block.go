@@ -12,14 +12,15 @@ import (
 
 // eventBlock converts the columns of a message to those of the core and checks
 // their structure. The error is a fault.List with the paths of the message.
-// Statuses and classes have the same numbers in both.
-func eventBlock(m *kinegatev1.EventBlock) (*event.Block, error) {
-	c := &columns{}
+// Statuses and classes have the same numbers in both. The block may share the
+// message's columns of bytes and keeps its numbers in c.
+func eventBlock(m *kinegatev1.EventBlock, c *columns) (*event.Block, error) {
+	c.reset()
 	b := &event.Block{
 		EventIDs:      c.int64s("event_ids", m.GetEventIds()),
 		RunNumber:     m.GetRunNumber(),
 		ObjectOffsets: c.int32s("object_offsets", m.GetObjectOffsets()),
-		Class:         column.Uint8s[event.Class](m.GetObjectClasses()),
+		Class:         c.classes(m.GetObjectClasses()),
 	}
 	b.Coordinates = c.coordinates(m)
 	if x := m.GetMeasuredMask(); x != nil {
@@ -70,9 +71,19 @@ func eventBlock(m *kinegatev1.EventBlock) (*event.Block, error) {
 	return b, b.Validate()
 }
 
-// columns reads byte columns and collects what is wrong with their lengths.
+// columns reads byte columns and collects what is wrong with their lengths. Its
+// memory is used again for the next block.
 type columns struct {
 	faults fault.List
+
+	numbers []float64
+	longs   []int64
+	ints    []int32
+	class   []event.Class
+}
+
+func (c *columns) reset() {
+	*c = columns{numbers: c.numbers[:0], longs: c.longs[:0], ints: c.ints[:0], class: c.class[:0]}
 }
 
 // note keeps a length that does not fit.
@@ -84,21 +95,36 @@ func (c *columns) note(field string, err error) {
 }
 
 func (c *columns) float64s(field string, raw []byte) []float64 {
-	xs, err := column.Float64s(raw)
+	xs, err := read(&c.numbers, raw, column.AppendFloat64s)
 	c.note(field, err)
 	return xs
 }
 
 func (c *columns) int64s(field string, raw []byte) []int64 {
-	xs, err := column.Int64s(raw)
+	xs, err := read(&c.longs, raw, column.AppendInt64s)
 	c.note(field, err)
 	return xs
 }
 
 func (c *columns) int32s(field string, raw []byte) []int32 {
-	xs, err := column.Int32s(raw)
+	xs, err := read(&c.ints, raw, column.AppendInt32s)
 	c.note(field, err)
 	return xs
+}
+
+func (c *columns) classes(raw []byte) []event.Class {
+	start := len(c.class)
+	c.class = column.AppendUint8s(c.class, raw)
+	return c.class[start:]
+}
+
+// read decodes a column behind those that are in the arena already. Should the arena
+// move, they stay where they were.
+func read[T any](arena *[]T, raw []byte, decode func([]T, []byte) ([]T, error)) ([]T, error) {
+	start := len(*arena)
+	xs, err := decode(*arena, raw)
+	*arena = xs
+	return xs[start:len(xs):len(xs)], err
 }
 
 // points is any message with a column per coordinate of a point.

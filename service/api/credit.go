@@ -21,25 +21,54 @@ func newCreditPool(size int64, observer StreamObserver) *creditPool {
 // retryOverload is how long a caller refused for lack of room should wait.
 const retryOverload = time.Second
 
-// take reserves bytes for a stream, or refuses: a stream that cannot have its whole
-// credit would stall at its first large block. The caller gives them back once.
-func (p *creditPool) take(bytes int64) (giveBack func(), err error) {
+// take reserves bytes, or refuses: a stream that cannot have its whole credit would
+// stall at its first large block.
+func (p *creditPool) take(bytes int64) error {
 	p.mu.Lock()
 	defer p.mu.Unlock()
 	if p.left < bytes {
 		refusal := Refuse(ServerOverloaded, "the judge streams of this server hold all credit there is",
 			"wanted_byte_count", strconv.FormatInt(bytes, 10), "left_byte_count", strconv.FormatInt(p.left, 10))
 		refusal.RetryAfter = retryOverload
-		return nil, refusal
+		return refusal
 	}
 	p.left -= bytes
 	p.observer.CreditHeld(bytes)
-	return sync.OnceFunc(func() {
-		p.mu.Lock()
-		defer p.mu.Unlock()
-		p.left += bytes
-		p.observer.CreditHeld(-bytes)
-	}), nil
+	return nil
+}
+
+// hold is what one stream has taken from the pool.
+type hold struct {
+	pool *creditPool
+
+	mu    sync.Mutex
+	bytes int64
+	over  bool
+}
+
+// grow takes what is missing to a number of bytes; what is held already is kept.
+func (h *hold) grow(bytes int64) error {
+	h.mu.Lock()
+	defer h.mu.Unlock()
+	if h.over || bytes <= h.bytes {
+		return nil
+	}
+	if err := h.pool.take(bytes - h.bytes); err != nil {
+		return err
+	}
+	h.bytes = bytes
+	return nil
+}
+
+// giveBack returns everything for good.
+func (h *hold) giveBack() {
+	h.mu.Lock()
+	defer h.mu.Unlock()
+	h.pool.mu.Lock()
+	defer h.pool.mu.Unlock()
+	h.pool.left += h.bytes
+	h.pool.observer.CreditHeld(-h.bytes)
+	h.bytes, h.over = 0, true
 }
 
 // ledger is the credit of one stream: what of it blocks use that are not answered.

@@ -1,33 +1,21 @@
 package api
 
 import (
-	"context"
 	"errors"
 	"io"
-	"strings"
 	"time"
 
 	"google.golang.org/grpc"
 	"google.golang.org/grpc/metadata"
 
-	"example.org/kinegate/kinematics/event"
 	"example.org/kinegate/kinematics/fault"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 )
-
-// heartbeatInterval is the silence after which a side says that it is alive.
-const heartbeatInterval = time.Second
 
 // judgeServer is the server's side of the stream.
 type judgeServer = grpc.BidiStreamingServer[kinegatev1.JudgeRequest, kinegatev1.JudgeResponse]
 
 // Judge answers event blocks with verdict blocks in order.
-//
-// Three goroutines share the work, so that no caller can wedge the stream by
-// writing without reading: the reader books credit and hands blocks on, the judge
-// turns them into verdicts, and the handler's own goroutine writes. Between them
-// are channels as long as the block credit, which the reader never overfills
-// because it refuses blocks beyond the credit.
 func (s *selectionService) Judge(stream judgeServer) error {
 	open, err := firstFrame(stream)
 	if err != nil {
@@ -69,34 +57,18 @@ func firstFrame(stream judgeServer) (*kinegatev1.JudgeOpen, error) {
 // maxLatencyBudget bounds the budget well below the range of time.Duration.
 const maxLatencyBudget = time.Hour
 
-// judgeStream is one open stream.
-type judgeStream struct {
-	service *selectionService
-	stream  judgeServer
-	ledger  ledger
-	// pending are blocks read and not yet judged, replies verdicts not yet sent.
-	pending chan pendingBlock
-	replies chan reply
-	// reader ends the reading: the channel's error is why, nil at the caller's end.
-	ended    chan error
-	judging  *judging
-	budget   time.Duration
-	giveBack func()
-	drained  bool
-}
+// Memory of replies. A stream whose reader has stopped holds three: one that the
+// transport has taken, one on its way there and one just judged.
+const (
+	repliesHeld = 3
+	// replyAllowance is what they may take beside the stream's credit.
+	replyAllowance = 256 << 10
+)
 
-// pendingBlock is a block on its way to the judge.
-type pendingBlock struct {
-	block   *kinegatev1.EventBlock
-	bytes   int64
-	receipt time.Time
-}
-
-// reply is a verdict on its way to the caller.
-type reply struct {
-	verdict *kinegatev1.VerdictBlock
-	bytes   int64
-	receipt time.Time
+// booking is what a stream takes from the pool: its credit, and room for replies that
+// could be large.
+func booking(credit, largestReply int64) int64 {
+	return credit + max(0, repliesHeld*largestReply-replyAllowance)
 }
 
 // open takes the credit, compiles the selection and tells the caller both. The
@@ -117,25 +89,15 @@ func (s *selectionService) open(stream judgeServer, open *kinegatev1.JudgeOpen) 
 	if err != nil {
 		return nil, err
 	}
-	giveBack, err := s.credit.take(int64(limits.CreditBytes))
-	if err != nil {
+	held := &hold{pool: s.credit}
+	room := func(largestReply int64) error { return held.grow(booking(int64(limits.CreditBytes), largestReply)) }
+	if err := room(judging.largestReply()); err != nil {
 		return nil, err
 	}
-	j := &judgeStream{
-		service: s, stream: stream, judging: judging, giveBack: giveBack,
-		pending: make(chan pendingBlock, limits.CreditBlocks),
-		replies: make(chan reply, limits.CreditBlocks),
-		ended:   make(chan error, 1),
-		ledger: ledger{
-			blockCredit: int64(limits.CreditBlocks), byteCredit: int64(limits.CreditBytes),
-			received: open.GetFirstSequence() - 1, answered: open.GetFirstSequence() - 1,
-		},
-	}
-	if open.LatencyBudgetS != nil {
-		j.budget = time.Duration(open.GetLatencyBudgetS() * float64(time.Second))
-	}
+	judging.room = func(largestReply int64) bool { return room(largestReply) == nil }
+	j := newJudgeStream(s, stream, judging, open, held.giveBack)
 	if err := stream.SendHeader(metadata.MD{}); err != nil {
-		giveBack()
+		held.giveBack()
 		return nil, err
 	}
 	opened := &kinegatev1.JudgeOpened{
@@ -145,209 +107,8 @@ func (s *selectionService) open(stream judgeServer, open *kinegatev1.JudgeOpen) 
 		Hypotheses:      judging.compiled.outline,
 	}
 	if err := stream.Send(&kinegatev1.JudgeResponse{Frame: &kinegatev1.JudgeResponse_Opened{Opened: opened}}); err != nil {
-		giveBack()
+		held.giveBack()
 		return nil, err
 	}
 	return j, nil
-}
-
-// run serves the stream to its end. The reader may outlive it by a moment: gRPC
-// unblocks it when the handler returns.
-func (j *judgeStream) run() error {
-	ctx, cancel := context.WithCancel(j.stream.Context())
-	defer cancel()
-	stop := make(chan struct{})
-	go func() { j.ended <- Contain(func() error { return j.read(ctx, stop) }) }()
-	judged := make(chan error, 1)
-	go func() {
-		defer close(j.replies)
-		judged <- Contain(func() error { return j.judge(ctx) })
-	}()
-	writeErr := j.write(stop)
-	cancel()
-	// The judge ends because its context or its input does; its error comes first,
-	// as it may be the reason why the replies ended.
-	if err := <-judged; err != nil && !errors.Is(err, context.Canceled) {
-		return err
-	}
-	if writeErr != nil || j.drained {
-		return writeErr
-	}
-	return <-j.ended
-}
-
-// read receives frames until the caller ends, breaks the protocol, or stop is
-// closed. It always closes pending, after the last block that will be answered.
-func (j *judgeStream) read(ctx context.Context, stop <-chan struct{}) error {
-	frames := make(chan frame)
-	go func() {
-		defer close(frames)
-		for {
-			var request *kinegatev1.JudgeRequest
-			err := Contain(func() (err error) {
-				request, err = j.stream.Recv()
-				return err
-			})
-			select {
-			case frames <- frame{request, err}:
-			case <-ctx.Done():
-				return
-			}
-			if err != nil {
-				return
-			}
-		}
-	}()
-	defer close(j.pending)
-	idleLimit := j.service.deps.StreamIdle
-	idle := time.NewTimer(idleLimit)
-	defer idle.Stop()
-	for {
-		select {
-		case f := <-frames:
-			if errors.Is(f.err, io.EOF) {
-				return nil
-			}
-			if f.err != nil {
-				return f.err
-			}
-			idle.Reset(idleLimit)
-			if err := j.accept(f.request); err != nil {
-				return err
-			}
-		case <-idle.C:
-			return Refuse(StreamIdle, "no block and no heartbeat for "+idleLimit.String())
-		case <-stop:
-			return nil
-		case <-ctx.Done():
-			return ctx.Err()
-		}
-	}
-}
-
-// frame is what Recv returned.
-type frame struct {
-	request *kinegatev1.JudgeRequest
-	err     error
-}
-
-// accept books a block and hands it on; the channel has room for the whole credit.
-func (j *judgeStream) accept(request *kinegatev1.JudgeRequest) error {
-	switch f := request.GetFrame().(type) {
-	case *kinegatev1.JudgeRequest_Block:
-		receipt := j.service.deps.Now()
-		bytes := blockBytes(f.Block)
-		if err := j.ledger.use(f.Block.GetSequence(), bytes, receipt); err != nil {
-			return err
-		}
-		j.pending <- pendingBlock{block: f.Block, bytes: bytes, receipt: receipt}
-		return nil
-	case *kinegatev1.JudgeRequest_Heartbeat:
-		return nil
-	case *kinegatev1.JudgeRequest_Open:
-		return Refuse(StreamProtocolBroken, "the stream is open already")
-	}
-	return Refuse(StreamProtocolBroken, "a frame must be a block or a heartbeat")
-}
-
-// judge turns blocks into verdicts until there are no more.
-func (j *judgeStream) judge(ctx context.Context) error {
-	for p := range j.pending {
-		var deadline time.Time
-		if j.budget > 0 {
-			deadline = p.receipt.Add(j.budget)
-		}
-		verdict, err := j.judging.block(ctx, p.block, p.bytes, deadline)
-		if err != nil {
-			return err
-		}
-		select {
-		case j.replies <- reply{verdict: verdict, bytes: p.bytes, receipt: p.receipt}:
-		case <-ctx.Done():
-			return ctx.Err()
-		}
-	}
-	return nil
-}
-
-// write sends verdicts, and a heartbeat after a second of silence, until there are
-// no more. When the server drains it says so, stops the reading, and goes on until
-// everything that was read is answered.
-func (j *judgeStream) write(stop chan<- struct{}) error {
-	beat := time.NewTimer(heartbeatInterval)
-	defer beat.Stop()
-	draining := j.service.deps.Drain.Started
-	for {
-		var response *kinegatev1.JudgeResponse
-		select {
-		case r, more := <-j.replies:
-			if !more {
-				return nil
-			}
-			if err := j.stream.Send(&kinegatev1.JudgeResponse{Frame: &kinegatev1.JudgeResponse_Verdict{Verdict: r.verdict}}); err != nil {
-				return err
-			}
-			j.ledger.answer(r.verdict.GetSequence(), r.bytes)
-			j.observe(r)
-			beat.Reset(heartbeatInterval)
-			continue
-		case <-beat.C:
-			received, answered, oldest := j.ledger.pulse(j.service.deps.Now())
-			response = &kinegatev1.JudgeResponse{Frame: &kinegatev1.JudgeResponse_Heartbeat{Heartbeat: &kinegatev1.Heartbeat{
-				ReceivedSequence: received, AnsweredSequence: answered, OldestPendingS: oldest.Seconds(),
-			}}}
-		case <-draining:
-			draining, j.drained = nil, true
-			close(stop)
-			_, answered, _ := j.ledger.pulse(j.service.deps.Now())
-			response = &kinegatev1.JudgeResponse{Frame: &kinegatev1.JudgeResponse_Draining{Draining: &kinegatev1.Draining{
-				AnsweredSequence: answered, GraceS: j.service.deps.Drain.Grace.Seconds(),
-			}}}
-		}
-		if err := j.stream.Send(response); err != nil {
-			return err
-		}
-		beat.Reset(heartbeatInterval)
-	}
-}
-
-// observe counts a reply that was sent.
-func (j *judgeStream) observe(r reply) {
-	observer := j.service.deps.Observer
-	observer.BlockAnswered(j.service.deps.Now().Sub(r.receipt))
-	if r.verdict.GetRejected() != nil {
-		observer.EventsJudged("block_rejected", 0)
-		return
-	}
-	var counts [event.BudgetUsed + 1]int
-	for _, status := range r.verdict.GetStatuses() {
-		if int(status) < len(counts) {
-			counts[status]++
-		}
-	}
-	accepted := onesCount(r.verdict.GetGate())
-	observer.EventsJudged("accepted", accepted)
-	observer.EventsJudged("rejected", counts[event.Good]+counts[event.BudgetUsed]-accepted)
-	for status := event.NonFinite; status <= event.Expired; status++ {
-		if counts[status] > 0 {
-			observer.EventsJudged(statusLabel(status), counts[status])
-		}
-	}
-}
-
-// statusLabel is the name of a status in the contract, in the form of a label.
-func statusLabel(s event.Status) string {
-	name := kinegatev1.EventStatus(s).String()
-	return strings.ToLower(strings.TrimPrefix(name, "EVENT_STATUS_"))
-}
-
-// outcome is the label under which the end of a stream is counted.
-func (j *judgeStream) outcome(err error) string {
-	switch {
-	case err != nil:
-		return string(Explain(err).Reason)
-	case j.drained:
-		return "draining"
-	}
-	return "done"
 }

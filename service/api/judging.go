@@ -2,6 +2,7 @@ package api
 
 import (
 	"context"
+	"sync"
 	"time"
 
 	"google.golang.org/protobuf/proto"
@@ -15,12 +16,13 @@ import (
 type judging struct {
 	service  *selectionService
 	compiled *compiledSelection
-	worker   *selection.Worker
 	detail   selection.Detail
 	limits   blockLimits
 	// follow names the selection whose newest version takes over; empty for none.
 	follow string
-	out    event.VerdictBlock
+	// room books room for larger replies; a judging that follows has it.
+	room func(largestReply int64) bool
+	crew crew
 }
 
 // newJudging finds and compiles the selection of a caller, whose blocks keep the
@@ -61,66 +63,71 @@ func (s *selectionService) newJudging(
 
 // use makes a selection the one that judges.
 func (j *judging) use(c *compiledSelection) {
-	j.compiled, j.worker = c, c.program.NewWorker(j.detail)
+	j.compiled = c
+	j.crew = newCrew(c.program, j.detail, j.service.turns)
 }
 
-// eventsPerTurn is how many events are judged in one turn. Pair windows take
-// microseconds an event, so that turns are short.
-const eventsPerTurn = 64
+// largestReply is the bound of a reply on a block within the limits.
+func (j *judging) largestReply() int64 { return j.compiled.largestReply(j.limits, j.detail) }
 
-// block judges a block of a stream. Structural faults make a rejected verdict; the
-// error is the end of the context.
-func (j *judging) block(ctx context.Context, m *kinegatev1.EventBlock, bytes int64, deadline time.Time) (*kinegatev1.VerdictBlock, error) {
+// workspace is the memory in which one block is judged.
+type workspace struct {
+	columns columns
+	out     event.VerdictBlock
+	verdict verdictColumns
+	parts   []event.VerdictBlock
+}
+
+// workspaces are shared by all callers, so that a stream which waits holds none.
+//
+//nolint:gochecknoglobals // a pool of memory has no state that anyone could see
+var workspaces = sync.Pool{New: func() any { return new(workspace) }}
+
+// block judges a block of a stream and returns its verdict, which shares the memory
+// of w. Structural faults make a rejected verdict; the error is the end of the
+// context.
+func (j *judging) block(ctx context.Context, m *kinegatev1.EventBlock, bytes int64, deadline time.Time, w *workspace) (*kinegatev1.VerdictBlock, error) {
 	j.catchUp()
-	block, err := convertBlock(m, bytes, j.limits)
+	block, err := convertBlock(m, bytes, j.limits, w)
 	if err != nil {
 		return rejection(m.GetSequence(), j.compiled.digest, err), nil
 	}
-	return j.events(ctx, m.GetSequence(), block, deadline)
+	return j.events(ctx, m.GetSequence(), block, deadline, w)
 }
 
 // events judges a sound block. Events left when the deadline passes are EXPIRED;
 // the zero deadline is none.
-func (j *judging) events(ctx context.Context, sequence int64, block *event.Block, deadline time.Time) (*kinegatev1.VerdictBlock, error) {
+func (j *judging) events(
+	ctx context.Context, sequence int64, block *event.Block, deadline time.Time, w *workspace,
+) (*kinegatev1.VerdictBlock, error) {
 	late := func() bool { return !deadline.IsZero() && j.service.deps.Now().After(deadline) }
-	// One event may have many assignments, so the worker looks up within it too.
-	j.worker.Stop = func() bool { return ctx.Err() != nil || late() }
-	n := block.Events()
-	j.worker.Reset(&j.out)
-	for done := 0; done < n; {
-		if late() {
-			j.worker.Expire(n-done, &j.out)
-			break
-		}
-		release, err := j.service.turns.take(ctx)
-		if err != nil {
-			return nil, err
-		}
-		done += j.worker.Judge(block, done, min(done+eventsPerTurn, n), &j.out)
-		release()
-		if err := ctx.Err(); err != nil {
-			return nil, err
-		}
+	if err := j.crew.judge(ctx, block, late, w); err != nil {
+		return nil, err
 	}
-	return verdictBlock(sequence, j.compiled.digest, &j.out), nil
+	return w.verdict.block(sequence, j.compiled.digest, &w.out), nil
 }
 
 // catchUp takes a newer version of a followed selection at a block boundary. One
-// whose replies could grow too large is left alone; the digest shows it.
+// whose replies could pass the limit of the transport, or for which there is no room,
+// is left alone; the digest shows it.
 func (j *judging) catchUp() {
 	if j.follow == "" {
 		return
 	}
 	newest, err := j.service.library.find(&kinegatev1.SelectionReference{Name: j.follow})
-	if err != nil || newest == j.compiled || newest.largestReply(j.limits, j.detail) > int64(j.service.deps.Limits.MessageBytes) {
+	if err != nil || newest.digest == j.compiled.digest {
+		return
+	}
+	largest := newest.largestReply(j.limits, j.detail)
+	if largest > int64(j.service.deps.Limits.MessageBytes) || !j.room(largest) {
 		return
 	}
 	j.use(newest)
 }
 
-// convertBlock reads a block within the limits.
-func convertBlock(m *kinegatev1.EventBlock, bytes int64, limits blockLimits) (*event.Block, error) {
-	block, err := eventBlock(m)
+// convertBlock reads a block within the limits into the memory of w.
+func convertBlock(m *kinegatev1.EventBlock, bytes int64, limits blockLimits, w *workspace) (*event.Block, error) {
+	block, err := eventBlock(m, &w.columns)
 	if err != nil {
 		return nil, Because(BlockInvalid, err)
 	}
@@ -139,19 +146,3 @@ func rejection(sequence int64, digest string, err error) *kinegatev1.VerdictBloc
 
 // blockBytes is the encoded size of a block.
 func blockBytes(m *kinegatev1.EventBlock) int64 { return int64(proto.Size(m)) }
-
-// turns limits how many blocks are judged at once over all callers. A turn is
-// short, so waiting callers take theirs in the order of the runtime's queue.
-type turns chan struct{}
-
-func newTurns(n int) turns { return make(turns, n) }
-
-// take waits for a turn; the caller gives it back at once after its use.
-func (t turns) take(ctx context.Context) (release func(), err error) {
-	select {
-	case t <- struct{}{}:
-		return func() { <-t }, nil
-	case <-ctx.Done():
-		return nil, ctx.Err()
-	}
-}

@@ -27,19 +27,44 @@ func NewLibrary(table *particle.Table) *Library {
 	return &Library{table: table, byName: map[string][]*compiledSelection{}}
 }
 
-// Add reads the text of a selection file and makes it the newest of its name. With
-// faults the library stays as it was, and the error is a *Failure that lists them.
-func (l *Library) Add(text string) error {
+// Version is one version of a named selection, ready to judge with.
+type Version struct{ compiled *compiledSelection }
+
+// Name is the name of the selection.
+func (v Version) Name() string { return v.compiled.message.GetName() }
+
+// Digest is the digest of this version in hexadecimal.
+func (v Version) Digest() string { return v.compiled.digest }
+
+// Read reads the text of a selection file. The error is a *Failure that lists every
+// fault.
+func (l *Library) Read(text string) (Version, error) {
 	message, c, faults := readSelection(text, l.table)
 	if len(faults) > 0 {
-		return selectionError(message.GetName(), faults)
+		return Version{}, selectionError(message.GetName(), faults)
 	}
+	return Version{c}, nil
+}
+
+// Take makes versions the newest of their names, all at once.
+func (l *Library) Take(versions ...Version) {
 	l.mu.Lock()
 	defer l.mu.Unlock()
-	name := message.GetName()
-	old := slices.DeleteFunc(slices.Clone(l.byName[name]), func(o *compiledSelection) bool { return o.digest == c.digest })
-	l.byName[name] = append([]*compiledSelection{c}, old[:min(len(old), keptDigests-1)]...)
-	return nil
+	for _, v := range versions {
+		name, c := v.Name(), v.compiled
+		old := slices.DeleteFunc(slices.Clone(l.byName[name]), func(o *compiledSelection) bool { return o.digest == c.digest })
+		l.byName[name] = append([]*compiledSelection{c}, old[:min(len(old), keptDigests-1)]...)
+	}
+}
+
+// Add reads the text of a selection file and makes it the newest of its name. With
+// faults the library stays as it was.
+func (l *Library) Add(text string) (Version, error) {
+	v, err := l.Read(text)
+	if err == nil {
+		l.Take(v)
+	}
+	return v, err
 }
 
 // find returns a selection by name and digest, the newest for an empty digest.

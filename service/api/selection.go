@@ -18,16 +18,22 @@ type selectionService struct {
 	deps    Deps
 	library *Library
 	credit  *creditPool
-	turns   turns
+	turns   *turns
 }
 
-func newSelectionService(deps Deps) *selectionService {
-	return &selectionService{
+// newSelectionServices makes the services of the gate and of bulk work: they share
+// everything but the turns.
+func newSelectionServices(deps Deps) (gate, bulk *selectionService) {
+	n := runtime.GOMAXPROCS(0)
+	gate = &selectionService{
 		deps:    deps,
 		library: deps.Library,
 		credit:  newCreditPool(int64(deps.Limits.PoolBytes), deps.Observer),
-		turns:   newTurns(runtime.GOMAXPROCS(0)),
+		turns:   newTurns(n, false),
 	}
+	shared := *gate
+	shared.turns = newTurns(n, true)
+	return gate, &shared
 }
 
 // CheckSelection reports every fault of a selection.
@@ -60,7 +66,9 @@ func (s *selectionService) CheckSelection(_ context.Context, request *kinegatev1
 // JudgeBlock judges one block.
 func (s *selectionService) JudgeBlock(ctx context.Context, request *kinegatev1.JudgeBlockRequest) (*kinegatev1.JudgeBlockResponse, error) {
 	bytes := blockBytes(request.GetBlock())
-	block, err := convertBlock(request.GetBlock(), bytes, s.deps.Limits.blocks())
+	// The verdict shares the workspace, so that it is not one of the pool.
+	w := new(workspace)
+	block, err := convertBlock(request.GetBlock(), bytes, s.deps.Limits.blocks(), w)
 	if err != nil {
 		return nil, In("block", err)
 	}
@@ -68,7 +76,7 @@ func (s *selectionService) JudgeBlock(ctx context.Context, request *kinegatev1.J
 	if err != nil {
 		return nil, err
 	}
-	verdict, err := j.events(ctx, request.GetBlock().GetSequence(), block, time.Time{})
+	verdict, err := j.events(ctx, request.GetBlock().GetSequence(), block, time.Time{}, w)
 	if err != nil {
 		return nil, err
 	}

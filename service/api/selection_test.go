@@ -23,7 +23,7 @@ func newServices(t testing.TB) *Services {
 
 func checkText(t testing.TB, yaml string) *kinegatev1.CheckSelectionResponse {
 	t.Helper()
-	reply, err := newServices(t).selection.CheckSelection(t.Context(), &kinegatev1.CheckSelectionRequest{
+	reply, err := newServices(t).bulk.CheckSelection(t.Context(), &kinegatev1.CheckSelectionRequest{
 		Form: &kinegatev1.CheckSelectionRequest_Yaml{Yaml: yaml},
 	})
 	if err != nil {
@@ -99,7 +99,7 @@ func TestCheckOfTextAndMessageAgree(t *testing.T) {
 	if len(fromText.GetFaults()) > 0 || fromText.GetSelectionDigest() == "" {
 		t.Fatalf("faults %v", fromText.GetFaults())
 	}
-	fromMessage, err := newServices(t).selection.CheckSelection(t.Context(), &kinegatev1.CheckSelectionRequest{
+	fromMessage, err := newServices(t).bulk.CheckSelection(t.Context(), &kinegatev1.CheckSelectionRequest{
 		Form: &kinegatev1.CheckSelectionRequest_Selection{Selection: fromText.GetSelection()},
 	})
 	if err != nil || !proto.Equal(fromText, fromMessage) {
@@ -109,7 +109,7 @@ func TestCheckOfTextAndMessageAgree(t *testing.T) {
 
 func TestCheckNeedsAForm(t *testing.T) {
 	t.Parallel()
-	if _, err := newServices(t).selection.CheckSelection(t.Context(), &kinegatev1.CheckSelectionRequest{}); Explain(err).Reason != FieldInvalid {
+	if _, err := newServices(t).bulk.CheckSelection(t.Context(), &kinegatev1.CheckSelectionRequest{}); Explain(err).Reason != FieldInvalid {
 		t.Errorf("got %v", err)
 	}
 }
@@ -133,7 +133,7 @@ func TestJudgeBlockOfAMeasuredEvent(t *testing.T) {
 		t.Fatal(err)
 	}
 	block, printed := dimuon()
-	reply, err := newServices(t).selection.JudgeBlock(t.Context(), &kinegatev1.JudgeBlockRequest{
+	reply, err := newServices(t).bulk.JudgeBlock(t.Context(), &kinegatev1.JudgeBlockRequest{
 		Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: checkText(t, string(yaml)).GetSelection()}},
 		Entries:   kinegatev1.EntryDetail_ENTRY_DETAIL_ACCEPTED,
 		Block:     block,
@@ -158,7 +158,7 @@ func TestJudgeBlockOfAMeasuredEvent(t *testing.T) {
 
 func TestJudgeBlockRefusals(t *testing.T) {
 	t.Parallel()
-	s := newServices(t).selection
+	s := newServices(t).bulk
 	valid := func() *kinegatev1.JudgeBlockRequest {
 		block, _ := dimuon()
 		return &kinegatev1.JudgeBlockRequest{
@@ -214,7 +214,7 @@ func TestLibraryKeepsVersions(t *testing.T) {
 	var digests []string
 	for _, prescale := range []string{"1", "2", "3", "4", "5"} {
 		text := "name: a\nhypotheses: [{name: h, reaction: \"-> gamma gamma\", prescale_count: " + prescale + "}]\n"
-		if err := library.Add(text); err != nil {
+		if _, err := library.Add(text); err != nil {
 			t.Fatal(err)
 		}
 		c, err := library.find(&kinegatev1.SelectionReference{Name: "a"})
@@ -223,7 +223,7 @@ func TestLibraryKeepsVersions(t *testing.T) {
 		}
 		digests = append(digests, c.digest)
 	}
-	if err := library.Add("name: a\nhypotheses: []\n"); Explain(err).Reason != SelectionInvalid {
+	if _, err := library.Add("name: a\nhypotheses: []\n"); Explain(err).Reason != SelectionInvalid {
 		t.Errorf("a faulty text: %v", err)
 	}
 	for i, digest := range digests {
@@ -253,7 +253,7 @@ func FuzzSelectionFile(f *testing.F) {
 	f.Add(faulty)
 	s := newServices(f)
 	f.Fuzz(func(t *testing.T, yaml string) {
-		reply, err := s.selection.CheckSelection(t.Context(), &kinegatev1.CheckSelectionRequest{
+		reply, err := s.bulk.CheckSelection(t.Context(), &kinegatev1.CheckSelectionRequest{
 			Form: &kinegatev1.CheckSelectionRequest_Yaml{Yaml: yaml},
 		})
 		if err != nil {
@@ -263,7 +263,7 @@ func FuzzSelectionFile(f *testing.F) {
 			return
 		}
 		block, _ := dimuon()
-		_, err = s.selection.JudgeBlock(t.Context(), &kinegatev1.JudgeBlockRequest{
+		_, err = s.bulk.JudgeBlock(t.Context(), &kinegatev1.JudgeBlockRequest{
 			Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: reply.GetSelection()}},
 			Block:     block,
 		})
@@ -296,7 +296,7 @@ func FuzzEventBlock(f *testing.F) {
 		if proto.Unmarshal(raw, &m) != nil {
 			return
 		}
-		reply, err := s.selection.JudgeBlock(t.Context(), &kinegatev1.JudgeBlockRequest{
+		reply, err := s.bulk.JudgeBlock(t.Context(), &kinegatev1.JudgeBlockRequest{
 			Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: selection}},
 			Entries:   kinegatev1.EntryDetail_ENTRY_DETAIL_ALL,
 			Block:     &m,

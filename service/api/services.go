@@ -1,6 +1,7 @@
 package api
 
 import (
+	"context"
 	"time"
 
 	"google.golang.org/grpc"
@@ -30,8 +31,13 @@ type Deps struct {
 	// StreamIdle is the time without a frame after which a judge stream is ended; a
 	// minute if 0.
 	StreamIdle time.Duration
+	// StallLimit is the time without progress in sending to a judge stream after which
+	// it is ended; 5 s if 0.
+	StallLimit time.Duration
 	// Drain says when to leave. Optional.
 	Drain Drain
+	// Connection describes the connection under a call. Optional.
+	Connection func(context.Context) Connection
 	// Observer sees what happens on judge streams. Optional.
 	Observer StreamObserver
 }
@@ -43,6 +49,15 @@ type Drain struct {
 	Started <-chan struct{}
 	// Grace is the time from then until the connections are cut.
 	Grace time.Duration
+}
+
+// Connection is what a stream may know of the connection under it, and do to it.
+type Connection struct {
+	// Close closes the connection, with all calls on it. Nil where a stream must not:
+	// behind a proxy other callers share the connection.
+	Close func()
+	// Life is the time that a stream opened now may last; 0 is without end.
+	Life time.Duration
 }
 
 // StreamObserver sees what happens on judge streams. Its methods may be called from
@@ -64,9 +79,9 @@ type StreamObserver interface {
 
 // Services are the rpc services of one server.
 type Services struct {
-	deps      Deps
-	particle  *particleService
-	selection *selectionService
+	deps       Deps
+	particle   *particleService
+	gate, bulk *selectionService
 }
 
 // New returns the services.
@@ -87,22 +102,32 @@ func New(deps Deps) (*Services, error) {
 	if deps.StreamIdle == 0 {
 		deps.StreamIdle = time.Minute
 	}
+	if deps.StallLimit == 0 {
+		deps.StallLimit = 5 * time.Second
+	}
+	if deps.Connection == nil {
+		deps.Connection = func(context.Context) Connection { return Connection{} }
+	}
 	if deps.Observer == nil {
 		deps.Observer = silent{}
 	}
-	return &Services{
-		deps:      deps,
-		particle:  newParticleService(deps.Table, standard),
-		selection: newSelectionService(deps),
-	}, nil
+	s := &Services{deps: deps, particle: newParticleService(deps.Table, standard)}
+	s.gate, s.bulk = newSelectionServices(deps)
+	return s, nil
 }
 
-// Register adds every service to a server. Several servers may share them.
-func (s *Services) Register(r grpc.ServiceRegistrar) {
+// Register adds every service to the server of general calls, whose bulk work steps
+// back for the gate. The server's codec must know Borrowed and Encoded.
+func (s *Services) Register(r grpc.ServiceRegistrar) { s.register(r, s.bulk) }
+
+// RegisterGate adds every service to the server of judge streams.
+func (s *Services) RegisterGate(r grpc.ServiceRegistrar) { s.register(r, s.gate) }
+
+func (s *Services) register(r grpc.ServiceRegistrar, selections *selectionService) {
 	kinegatev1.RegisterParticleServiceServer(r, s.particle)
 	kinegatev1.RegisterReactionServiceServer(r, &reactionService{table: s.deps.Table})
 	kinegatev1.RegisterDecayServiceServer(r, &decayService{table: s.deps.Table})
-	kinegatev1.RegisterSelectionServiceServer(r, s.selection)
+	kinegatev1.RegisterSelectionServiceServer(r, selections)
 	kinegatev1.RegisterInfoServiceServer(r, &infoService{deps: s.deps})
 }
 

@@ -6,40 +6,54 @@ import (
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 )
 
-// verdictBlock converts the columns of the core to those of a message, which
-// shares the core's numbers of statuses and classes. The message keeps no
-// reference to v.
-func verdictBlock(sequence int64, digest string, v *event.VerdictBlock) *kinegatev1.VerdictBlock {
+// verdictColumns makes messages of verdicts. Its memory is used again for the next
+// message, so the last one must be encoded before.
+type verdictColumns struct {
+	arena []byte
+}
+
+// block converts the columns of the core to those of a message, which shares the
+// core's numbers of statuses and classes. The message shares memory with v and c.
+func (c *verdictColumns) block(sequence int64, digest string, v *event.VerdictBlock) *kinegatev1.VerdictBlock {
+	c.arena = c.arena[:0]
 	m := &kinegatev1.VerdictBlock{
 		Sequence:        sequence,
 		SelectionDigest: digest,
 		EventCount:      int32(len(v.Status)), //nolint:gosec // a block has at most 4,096 events
-		Statuses:        column.Uint8(v.Status),
-		Gate:            append([]byte(nil), v.Gate...),
+		Statuses:        write(c, v.Status, column.AppendUint8),
+		Gate:            v.Gate,
 	}
 	for _, accepted := range v.Accepted {
-		m.Hypotheses = append(m.Hypotheses, &kinegatev1.HypothesisBits{Accepted: append([]byte(nil), accepted...)})
+		m.Hypotheses = append(m.Hypotheses, &kinegatev1.HypothesisBits{Accepted: accepted})
 	}
 	for _, best := range v.Best {
-		m.Groups = append(m.Groups, &kinegatev1.GroupBest{Best: column.Int16(best)})
+		m.Groups = append(m.Groups, &kinegatev1.GroupBest{Best: write(c, best, column.AppendInt16)})
 	}
 	if v.Entries != nil {
-		m.Entries = entryColumns(v.Entries)
+		m.Entries = c.entries(v.Entries)
 	}
 	return m
 }
 
-func entryColumns(e *event.Entries) *kinegatev1.EntryColumns {
+func (c *verdictColumns) entries(e *event.Entries) *kinegatev1.EntryColumns {
 	return &kinegatev1.EntryColumns{
-		Offsets:           column.Int32(e.Offsets),
-		HypothesisIndices: column.Int16(e.Hypothesis),
-		BeamRows:          column.Int16(e.BeamRow),
-		Weights:           column.Float64(e.Weight),
-		Statuses:          column.Uint8(e.Status),
-		AssignmentsTried:  column.Int32(e.Tried),
-		AssignmentOffsets: column.Int32(e.AssignmentOffsets),
-		Assignments:       column.Int16(e.Assignment),
-		ObservableOffsets: column.Int32(e.ObservableOffsets),
-		Observables:       column.Float64(e.Observables),
+		Offsets:           write(c, e.Offsets, column.AppendInt32),
+		HypothesisIndices: write(c, e.Hypothesis, column.AppendInt16),
+		BeamRows:          write(c, e.BeamRow, column.AppendInt16),
+		Weights:           write(c, e.Weight, column.AppendFloat64),
+		Statuses:          write(c, e.Status, column.AppendUint8),
+		AssignmentsTried:  write(c, e.Tried, column.AppendInt32),
+		AssignmentOffsets: write(c, e.AssignmentOffsets, column.AppendInt32),
+		Assignments:       write(c, e.Assignment, column.AppendInt16),
+		ObservableOffsets: write(c, e.ObservableOffsets, column.AppendInt32),
+		Observables:       write(c, e.Observables, column.AppendFloat64),
 	}
+}
+
+// write encodes a column behind those that are in the arena already. Should the
+// arena move, they stay where they were.
+func write[T any](c *verdictColumns, xs []T, encode func([]byte, []T) []byte) []byte {
+	start := len(c.arena)
+	c.arena = encode(c.arena, xs)
+	return c.arena[start:len(c.arena):len(c.arena)]
 }

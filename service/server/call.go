@@ -43,11 +43,15 @@ func (c *call) Context() context.Context { return c.ctx }
 
 // RecvMsg receives the next message; io.EOF is the end.
 func (c *call) RecvMsg(m any) error {
-	message, ok := m.(proto.Message)
-	if !ok {
+	in := incoming{limits: c.limits}
+	switch m := m.(type) {
+	case *api.Borrowed:
+		in.message, in.borrowed = m.Message, m
+	case proto.Message:
+		in.message = m
+	default:
 		return fmt.Errorf("cannot receive a %T", m)
 	}
-	in := incoming{message: message, limits: c.limits}
 	err := c.receive(&in)
 	switch {
 	case !c.single:
@@ -80,11 +84,7 @@ func (c *call) receive(in *incoming) error {
 
 // SendMsg sends a message.
 func (c *call) SendMsg(m any) error {
-	message, ok := m.(proto.Message)
-	if !ok {
-		return fmt.Errorf("cannot send a %T", m)
-	}
-	out, err := encode(message, c.limits.MessageBytes)
+	out, err := encode(m, c.limits.MessageBytes)
 	if err != nil {
 		return err
 	}

@@ -13,8 +13,9 @@ import (
 // instead of failing: gRPC answers a codec that fails by itself, without an
 // ErrorInfo.
 type incoming struct {
-	message proto.Message // nil for a message that nobody wants
-	limits  api.Limits
+	message  proto.Message // nil for a message that nobody wants
+	borrowed *api.Borrowed // set where the message may keep the buffer
+	limits   api.Limits
 
 	size  int
 	fault *api.Failure
@@ -55,41 +56,52 @@ func (codec) Unmarshal(data mem.BufferSlice, v any) error {
 	if in.message == nil {
 		return nil
 	}
-	buffer := data.MaterializeToBuffer(mem.DefaultBufferPool())
+	buffer := data.MaterializeToBuffer(api.Buffers)
 	defer buffer.Free()
 	wire := buffer.ReadOnlyData()
 	if in.fault = checkWire(wire, in.message, int64(in.limits.DecodedBytes)); in.fault != nil {
 		return nil
 	}
-	if err := proto.Unmarshal(wire, in.message); err != nil {
+	if err := in.decode(buffer); err != nil {
 		in.fault = undecodable(in.message, err)
 	}
 	return nil
 }
 
-// encode returns the frame for a message, or why it cannot be sent.
-func encode(message proto.Message, limit int) (*outgoing, error) {
-	size := proto.Size(message)
-	if size > limit {
-		return nil, api.OverLimit(api.ReplyTooLarge, "the size of the reply in bytes,", int64(size), int64(limit),
-			"ask for less at a time")
+// decode reads the message from its checked wire form.
+func (in *incoming) decode(buffer mem.Buffer) error {
+	if in.borrowed != nil {
+		return in.borrowed.Decode(buffer) //nolint:wrapcheck // the caller names the message
 	}
-	// The size was computed above and the message does not change in between.
-	options := proto.MarshalOptions{UseCachedSize: true}
-	if mem.IsBelowBufferPoolingThreshold(size) {
-		data, err := options.Marshal(message)
+	return proto.Unmarshal(buffer.ReadOnlyData(), in.message) //nolint:wrapcheck // the caller names the message
+}
+
+// encode returns the frame for a message, or why it cannot be sent.
+func encode(m any, limit int) (*outgoing, error) {
+	switch m := m.(type) {
+	case *api.Encoded:
+		if size := m.Data.Len(); size > limit {
+			m.Data.Free()
+			return nil, replyTooLarge(size, limit)
+		}
+		return &outgoing{m.Data}, nil
+	case proto.Message:
+		if size := proto.Size(m); size > limit {
+			return nil, replyTooLarge(size, limit)
+		}
+		data, err := api.EncodeMessage(m)
 		if err != nil {
 			return nil, fmt.Errorf("reply does not encode: %w", err)
 		}
-		return &outgoing{mem.BufferSlice{mem.SliceBuffer(data)}}, nil
+		return &outgoing{data}, nil
 	}
-	pool := mem.DefaultBufferPool()
-	data := pool.Get(size)
-	if _, err := options.MarshalAppend((*data)[:0], message); err != nil {
-		pool.Put(data)
-		return nil, fmt.Errorf("reply does not encode: %w", err)
-	}
-	return &outgoing{mem.BufferSlice{mem.NewBuffer(data, pool)}}, nil
+	return nil, fmt.Errorf("cannot send a %T", m)
+}
+
+// replyTooLarge is the failure of a reply over the limit.
+func replyTooLarge(size, limit int) *api.Failure {
+	return api.OverLimit(api.ReplyTooLarge, "the size of the reply in bytes,", int64(size), int64(limit),
+		"ask for less at a time")
 }
 
 // tooLarge is the failure of a message over the limit.

@@ -7,7 +7,11 @@ import (
 	"os"
 	"sync"
 	"sync/atomic"
+	"time"
 
+	"google.golang.org/grpc/peer"
+
+	"example.org/kinegate/service/api"
 	"example.org/kinegate/service/telemetry"
 )
 
@@ -90,7 +94,7 @@ func (b bounded) Accept() (net.Conn, error) {
 		}
 		if b.places.open.Add(1) <= b.places.most {
 			b.places.metrics.Connections(1)
-			return &placed{Conn: conn, places: b.places}, nil
+			return &placed{Conn: conn, places: b.places, since: time.Now()}, nil
 		}
 		b.places.open.Add(-1)
 		b.places.metrics.Rejected(connectionLimit)
@@ -103,7 +107,39 @@ type placed struct {
 	net.Conn
 
 	places *places
+	since  time.Time
 	once   sync.Once
+}
+
+// RemoteAddr is the address of the peer, through which calls find their connection.
+func (p *placed) RemoteAddr() net.Addr { return origin{p.Conn.RemoteAddr(), p} }
+
+// origin is the address of a peer with the connection to it.
+type origin struct {
+	net.Addr
+
+	conn *placed
+}
+
+// connectionOf tells a judge stream what it may know of its connection. Its life ends
+// before the transport would cut it: calls that a connection still takes have the
+// grace before them, whatever its age.
+func (o *Options) connectionOf(ctx context.Context) api.Connection {
+	p, ok := peer.FromContext(ctx)
+	if !ok {
+		return api.Connection{}
+	}
+	from, ok := p.Addr.(origin)
+	if !ok {
+		return api.Connection{}
+	}
+	const early, half = 0.85, 2 // the transport varies the age by a tenth
+	left := time.Duration(early*float64(o.ConnectionAge)) - time.Since(from.conn.since)
+	c := api.Connection{Life: max(left, o.ConnectionAgeGrace/half)}
+	if !o.BehindProxy {
+		c.Close = func() { _ = from.conn.Close() } // what it leads to is told by the stream
+	}
+	return c
 }
 
 // Close closes the connection.

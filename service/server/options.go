@@ -34,7 +34,11 @@ type Options struct {
 	DefaultDeadline, LongestDeadline, StreamIdle         time.Duration
 	DrainNotice, DrainTime, StopMargin, TerminationGrace time.Duration
 
+	StallLimit  time.Duration
+	BehindProxy bool
+
 	ParticleFiles, SelectionFiles []string
+	SelectionFolder               string
 	Reflection                    bool
 	LogLevel                      string
 }

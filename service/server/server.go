@@ -31,6 +31,7 @@ type Server struct {
 	services     *api.Services
 	health       *health
 	certificates *certificates // nil for plaintext
+	folder       *folder       // nil for none
 	fronts       map[Listener]*front
 	webs         map[Listener]*http.Server
 	places       places
@@ -79,7 +80,7 @@ func New(options Options, deps Deps) (*Server, error) {
 			return nil, err
 		}
 	}
-	if s.services, err = newServices(&s.options, &deps, metrics, s.leaving); err != nil {
+	if s.services, s.folder, err = newServices(&s.options, &deps, metrics, s.leaving); err != nil {
 		return nil, err
 	}
 	s.build()
@@ -94,8 +95,8 @@ func (s *Server) build() {
 		authorise: s.deps.Authorise, defaultDeadline: o.DefaultDeadline, longestDeadline: o.LongestDeadline,
 		leaving: s.leaving, nonce: newNonce(),
 	}
-	s.fronts[Gate] = s.rpcFront(d, o.GateStreams, o.GateStreamWindow, o.GateConnectionWindow)
-	s.fronts[General] = s.rpcFront(d, o.GeneralStreams, o.GeneralStreamWindow, o.GeneralConnectionWindow)
+	s.fronts[Gate] = s.rpcFront(d, o.GateStreams, o.GateStreamWindow, o.GateConnectionWindow, s.services.RegisterGate)
+	s.fronts[General] = s.rpcFront(d, o.GeneralStreams, o.GeneralStreamWindow, o.GeneralConnectionWindow, s.services.Register)
 	s.health.know(s.fronts[General].server.GetServiceInfo())
 	if o.HealthAddress != "" {
 		f := newFront(d, o.GeneralStreams, s.serverOptions(o.GeneralStreamWindow, o.GeneralConnectionWindow))
@@ -111,13 +112,13 @@ func (s *Server) build() {
 }
 
 // rpcFront makes the front of a listener for rpcs.
-func (s *Server) rpcFront(d *desk, most int, stream, connection Bytes) *front {
+func (s *Server) rpcFront(d *desk, most int, stream, connection Bytes, register func(grpc.ServiceRegistrar)) *front {
 	options := s.serverOptions(stream, connection)
 	if s.certificates != nil {
 		options = append(options, grpc.Creds(credentials.NewTLS(s.certificates.config())))
 	}
 	f := newFront(d, most, options)
-	s.services.Register(f)
+	register(f)
 	healthpb.RegisterHealthServer(f, s.health)
 	if s.options.Reflection {
 		described := reflection.ServerOptions{Services: f.server}

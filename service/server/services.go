@@ -10,27 +10,37 @@ import (
 	"example.org/kinegate/service/telemetry"
 )
 
-// newServices makes the rpc services from the files that the options name. Faults of
-// all files are reported at once.
-func newServices(o *Options, deps *Deps, metrics *telemetry.Metrics, leaving <-chan struct{}) (*api.Services, error) {
+// newServices makes the rpc services from the files that the options name, and the
+// folder to watch, if there is one. Faults of all files are reported at once.
+func newServices(o *Options, deps *Deps, metrics *telemetry.Metrics, leaving <-chan struct{}) (*api.Services, *folder, error) {
 	table, err := loadTable(o.ParticleFiles)
 	if err != nil {
-		return nil, err
+		return nil, nil, err
 	}
-	library, err := loadLibrary(o.SelectionFiles, table)
+	library := api.NewLibrary(table)
+	names, err := loadSelections(o.SelectionFiles, library)
+	var watched *folder
+	if o.SelectionFolder != "" {
+		var folderErr error
+		watched, folderErr = loadFolder(o.SelectionFolder, library, names, metrics, deps.Log)
+		err = errors.Join(err, folderErr)
+	}
 	if err != nil {
-		return nil, err
+		return nil, nil, err
 	}
-	return api.New(api.Deps{
+	services, err := api.New(api.Deps{
 		Version:    deps.Version,
 		Table:      table,
 		Library:    library,
 		Limits:     o.limits(),
 		Now:        deps.Now,
 		StreamIdle: o.StreamIdle,
+		StallLimit: o.StallLimit,
 		Drain:      api.Drain{Started: leaving, Grace: o.DrainTime},
+		Connection: o.connectionOf,
 		Observer:   metrics,
 	})
+	return services, watched, err
 }
 
 // loadTable lays particle files over the standard table.
@@ -52,23 +62,22 @@ func loadTable(paths []string) (*particle.Table, error) {
 	return table, nil
 }
 
-// loadLibrary reads selection files.
-func loadLibrary(paths []string, table *particle.Table) (*api.Library, error) {
-	library := api.NewLibrary(table)
+// loadSelections reads selection files into the library and returns their names.
+func loadSelections(paths []string, library *api.Library) (names []string, err error) {
 	var faults []error
 	for _, path := range paths {
 		data, err := readFile("selection_files", path)
 		if err == nil {
-			err = library.Add(string(data))
+			var v api.Version
+			if v, err = library.Add(string(data)); err == nil {
+				names = append(names, v.Name())
+			}
 		}
 		if err != nil {
 			faults = append(faults, fmt.Errorf("%s: %w", path, err))
 		}
 	}
-	if err := errors.Join(faults...); err != nil {
-		return nil, err
-	}
-	return library, nil
+	return names, errors.Join(faults...)
 }
 
 // readFile reads the file that a setting names.

@@ -31,6 +31,7 @@ type Metrics struct {
 	draining    prometheus.Gauge
 	expiry      *prometheus.GaugeVec
 	reloaded    prometheus.Gauge
+	selections  prometheus.Gauge
 	streams     streamMetrics
 }
 
@@ -80,6 +81,10 @@ func NewMetrics(r prometheus.Registerer, version string) (*Metrics, error) {
 			Name: "kinegate_certificate_reload_success",
 			Help: "1 if the certificate files were sound when last read, 0 if the old set is kept.",
 		}),
+		selections: prometheus.NewGauge(prometheus.GaugeOpts{
+			Name: "kinegate_selection_reload_success",
+			Help: "1 if every file of the folder of selections was sound when last read, 0 if an old version is kept.",
+		}),
 		streams: newStreamMetrics(),
 	}
 	build := prometheus.NewGauge(prometheus.GaugeOpts{
@@ -89,7 +94,7 @@ func NewMetrics(r prometheus.Registerer, version string) (*Metrics, error) {
 	})
 	build.Set(1)
 	all := append(m.streams.all(), m.duration, m.calls, m.inFlight, m.rejected, m.panics,
-		m.connections, m.draining, m.expiry, m.reloaded, build)
+		m.connections, m.draining, m.expiry, m.reloaded, m.selections, build)
 	for _, c := range all {
 		if err := r.Register(c); err != nil {
 			return nil, fmt.Errorf("registering a metric: %w", err)
@@ -130,6 +135,14 @@ func (m *Metrics) CertificatesReloaded(sound bool) {
 	m.reloaded.Set(0)
 	if sound {
 		m.reloaded.Set(1)
+	}
+}
+
+// SelectionsReloaded says whether the folder of selections was sound when last read.
+func (m *Metrics) SelectionsReloaded(sound bool) {
+	m.selections.Set(0)
+	if sound {
+		m.selections.Set(1)
 	}
 }
 
