@@ -26,6 +26,11 @@ func (f *Fitter) Fit() Result {
 	f.begin()
 	copy(f.initial, f.residual)
 	f.result.Status = f.descend()
+	if f.result.Status != Converged {
+		if f.result.Status = f.restore(); f.result.Status == Converged {
+			f.result.Status = f.descend()
+		}
+	}
 	f.result.ChiSquare = f.chiSquare()
 	if f.result.Status == Converged && f.result.DegreesOfFreedom > 0 {
 		f.result.Probability = num.ChiSquareTail(f.result.ChiSquare, f.result.DegreesOfFreedom)

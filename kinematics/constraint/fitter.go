@@ -1,10 +1,6 @@
 package constraint
 
-import (
-	"math"
-
-	"example.org/kinegate/kinematics/momentum"
-)
+import "math"
 
 // Fitter fits one event at a time for a Problem. It is not safe for use by several
 // workers at once; each has its own. Its methods allocate nothing.
@@ -42,7 +38,11 @@ type Fitter struct {
 	system system
 	// penalty is the weight of the squared residuals in the merit.
 	penalty float64
-	// propagated says that system holds the covariance at the solution.
+	// held says that sigma stays as it is.
+	held bool
+	// covariance is that of the variables, once it is propagated; without one its size
+	// is zero.
+	covariance matrix
 	propagated bool
 	result     Result
 }
@@ -66,6 +66,7 @@ func (p *Problem) NewFitter() *Fitter {
 		sums:         make([][2]vector, len(p.masses)),
 		pulls:        make([]vector, len(p.parts)),
 		system:       newSystem(n + m),
+		covariance:   newMatrix(n),
 	}
 	for i := range f.bodies {
 		f.bodies[i].part = &p.parts[i]
@@ -241,10 +242,4 @@ func (f *Fitter) rounding(k int) float64 {
 		return 0x1p-50 * f.total
 	}
 	return 0x1p-49 * f.total * f.total
-}
-
-// Momentum returns the fitted four-momentum of an object.
-func (f *Fitter) Momentum(object int) momentum.Four {
-	v := &f.bodies[object].momentum
-	return momentum.Four{P: momentum.Three{X: v[0], Y: v[1], Z: v[2]}, E: v[3]}
 }

@@ -21,7 +21,7 @@ import "math"
 //	d2f/dz2   = s z'G z
 type pointing struct {
 	n, u        [3]float64
-	far      float64 // |d|
+	far         float64 // |d|
 	reach       float64 // R
 	gradient    [3]float64
 	curved      [3][3]float64 // G

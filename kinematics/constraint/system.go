@@ -37,8 +37,14 @@ func newSystem(n int) system {
 func (s *system) unit(v int) float64 { return s.scale[v] }
 
 // assemble writes the system at the current point with a part, from 0 to 1, of the
-// second derivatives. The pulls are set unless part is 0.
+// second derivatives, and scales it. The pulls are set unless part is 0.
 func (f *Fitter) assemble(part float64) {
+	f.write(part)
+	f.rescale()
+}
+
+// write is assemble before the scaling.
+func (f *Fitter) write(part float64) {
 	p, s := f.problem, &f.system
 	clear(s.matrix.entries)
 	for v, w := range p.weight {
@@ -53,7 +59,6 @@ func (f *Fitter) assemble(part float64) {
 		}
 	}
 	f.writeConstraints()
-	f.rescale()
 }
 
 // addCurvature adds the second derivatives of each object's momentum.
@@ -169,7 +174,9 @@ func (f *Fitter) rescale() {
 		if p.z != none && p.weight[p.z] > 0 {
 			sum += float64(row[p.z] * row[p.z])
 		}
-		f.sigma[k] = math.Sqrt(sum)
+		if !f.held {
+			f.sigma[k] = math.Sqrt(sum)
+		}
 		s.scale[p.variables+k] = 1 / f.sigma[k]
 	}
 	for v := range p.variables {
