@@ -37,11 +37,11 @@ func quasiFree(
 	m := &kinegatev1.QuasiFree{
 		Nucleus: q.Nucleus.Name, Spectator: q.Spectator.Name, FermiMomentumGev: q.FermiMomentum,
 		Model:  reaction.QuasiFreeModel,
-		AtRest: thresholdMessage(&q.AtRest), Lowest: thresholdMessage(&q.Lowest), Highest: thresholdMessage(&q.Highest),
-		LowestNucleonMomentumGev: q.LowestMomentum, Absolute: thresholdMessage(&q.Absolute),
+		AtRest: boundThreshold(&q.AtRest), Lowest: boundThreshold(&q.Lowest), Highest: boundThreshold(&q.Highest),
+		LowestNucleonMomentumGev: q.LowestMomentum, Absolute: boundThreshold(&q.Absolute),
 	}
 	if q.Coherent != nil {
-		m.Coherent, m.CoherentReaction = thresholdMessage(q.Coherent), coherentText(table, r, nucleus.Name)
+		m.Coherent, m.CoherentReaction = boundThreshold(q.Coherent), coherentText(table, r, nucleus.Name)
 	}
 	if in.Kind == reaction.Unstated {
 		return m, nil
@@ -56,6 +56,14 @@ func quasiFree(
 	}
 	m.EveryNucleon = reached(&q.Highest, motion.Kinetic)
 	return m, nil
+}
+
+// boundThreshold converts a threshold without its uncertainty, which the model's own far
+// exceeds.
+func boundThreshold(t *reaction.Threshold) *kinegatev1.Threshold {
+	m := thresholdMessage(t)
+	m.EnergyUncertaintyGev, m.SqrtSUncertaintyGev = nil, 0
+	return m
 }
 
 // reached reports whether a kinetic energy of the beam is above a threshold.

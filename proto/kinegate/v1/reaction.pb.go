@@ -723,7 +723,8 @@ func (x *PhaseSpaceVolume) GetGevPower() int32 {
 }
 
 // QuasiFree is a reaction on a nucleon bound in a nucleus at rest. Its threshold is
-// a range, since the nucleon moves.
+// a range, since the nucleon moves. Thresholds carry no uncertainties here: that of
+// the model is far larger than those of the masses.
 type QuasiFree struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
 	// The nucleus.
