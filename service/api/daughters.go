@@ -121,7 +121,7 @@ func granddaughters(
 			continue
 		}
 		for k, n := range from.Daughters {
-			l, err := decay.Granddaughter(parent, first(masses, i), first(own, k))
+			l, err := decay.Granddaughter(parent, toFront(masses, i), toFront(own, k))
 			if err != nil {
 				return In("parent", err)
 			}
@@ -138,8 +138,8 @@ func granddaughters(
 	return nil
 }
 
-// first returns the list with element i moved to the front.
-func first(list []float64, i int) []float64 {
+// toFront returns the list with element i moved to the front.
+func toFront(list []float64, i int) []float64 {
 	moved := []float64{list[i]}
 	moved = append(moved, list[:i]...)
 	return append(moved, list[i+1:]...)
