@@ -51,7 +51,8 @@ const serviceConfig = `{
     {
       "name": [
         {"service": "kinegate.v1.ParticleService"}, {"service": "kinegate.v1.ReactionService"},
-        {"service": "kinegate.v1.DecayService"}, {"service": "kinegate.v1.InfoService"},
+        {"service": "kinegate.v1.DecayService"}, {"service": "kinegate.v1.PhotonService"},
+        {"service": "kinegate.v1.InfoService"},
         {"service": "kinegate.v1.SelectionService", "method": "CheckSelection"},
         {"service": "kinegate.v1.SelectionService", "method": "JudgeBlock"}
       ],
@@ -74,6 +75,8 @@ type Client struct {
 	Reactions kinegatev1.ReactionServiceClient
 	// Decays answers questions about decays.
 	Decays kinegatev1.DecayServiceClient
+	// Photons answers for processes with real photons and for fields of photons.
+	Photons kinegatev1.PhotonServiceClient
 	// Selections checks selections and judges events; Judge is the better way to
 	// its stream.
 	Selections kinegatev1.SelectionServiceClient
@@ -116,6 +119,7 @@ func NewClient(conn *grpc.ClientConn) *Client {
 		Particles:  kinegatev1.NewParticleServiceClient(conn),
 		Reactions:  kinegatev1.NewReactionServiceClient(conn),
 		Decays:     kinegatev1.NewDecayServiceClient(conn),
+		Photons:    kinegatev1.NewPhotonServiceClient(conn),
 		Selections: kinegatev1.NewSelectionServiceClient(conn),
 		Info:       kinegatev1.NewInfoServiceClient(conn),
 		conn:       conn,

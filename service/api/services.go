@@ -127,6 +127,7 @@ func (s *Services) register(r grpc.ServiceRegistrar, selections *selectionServic
 	kinegatev1.RegisterParticleServiceServer(r, s.particle)
 	kinegatev1.RegisterReactionServiceServer(r, &reactionService{table: s.deps.Table})
 	kinegatev1.RegisterDecayServiceServer(r, &decayService{table: s.deps.Table})
+	kinegatev1.RegisterPhotonServiceServer(r, &photonService{table: s.deps.Table})
 	kinegatev1.RegisterSelectionServiceServer(r, selections)
 	kinegatev1.RegisterInfoServiceServer(r, &infoService{deps: s.deps})
 }

@@ -38,7 +38,7 @@ const (
 type PhotonServiceClient interface {
 	// DescribePhotonProcess gives cross-sections, spectra, edges and thresholds of one
 	// process. A photon below a threshold is an answer (a cross-section of 0), not an
-	// error. All lists of a request together hold at most 20,000 entries.
+	// error. All lists of a request together hold at most 10,000 entries.
 	DescribePhotonProcess(ctx context.Context, in *DescribePhotonProcessRequest, opts ...grpc.CallOption) (*DescribePhotonProcessResponse, error)
 	// DescribePhotonField says how an isotropic field of photons absorbs a photon by
 	// creation of pairs, for a whole list of photon energies. A photon below the
@@ -85,7 +85,7 @@ func (c *photonServiceClient) DescribePhotonField(ctx context.Context, in *Descr
 type PhotonServiceServer interface {
 	// DescribePhotonProcess gives cross-sections, spectra, edges and thresholds of one
 	// process. A photon below a threshold is an answer (a cross-section of 0), not an
-	// error. All lists of a request together hold at most 20,000 entries.
+	// error. All lists of a request together hold at most 10,000 entries.
 	DescribePhotonProcess(context.Context, *DescribePhotonProcessRequest) (*DescribePhotonProcessResponse, error)
 	// DescribePhotonField says how an isotropic field of photons absorbs a photon by
 	// creation of pairs, for a whole list of photon energies. A photon below the
