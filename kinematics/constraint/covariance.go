@@ -183,12 +183,19 @@ func (f *Fitter) Momentum(object int) momentum.Four {
 	return momentum.Four{P: momentum.Three{X: v[0], Y: v[1], Z: v[2]}, E: v[3]}
 }
 
+// Unfolded returns the same as Parameters with angles as the fit reached them from the
+// measured values, so that differences from those make sense.
+func (f *Fitter) Unfolded(object int) [3]float64 {
+	t := &f.bodies[object].theta
+	return [3]float64{t[0], t[1], t[2]}
+}
+
 // Parameters returns the fitted parameters of an object in its coordinate set, angles
 // folded to theta within 0..pi and phi within (-pi, pi]; for form Along the size of the
 // momentum and zeros, for missing momenta the components.
 func (f *Fitter) Parameters(object int) [3]float64 {
 	b := &f.bodies[object]
-	t := [3]float64{b.theta[0], b.theta[1], b.theta[2]}
+	t := f.Unfolded(object)
 	if b.form != Coordinates {
 		return t
 	}
