@@ -84,6 +84,9 @@ type Client struct {
 	Info kinegatev1.InfoServiceClient
 
 	conn *grpc.ClientConn
+	// redial makes another connection to the same address; nil where only the caller
+	// could.
+	redial func() (*grpc.ClientConn, error)
 }
 
 // Dial prepares a connection to an address: "host:port", "dns:///name:port" for
@@ -105,15 +108,24 @@ func Dial(address string, options Options) (*Client, error) {
 			Time: keepaliveTime, Timeout: keepaliveTimeout, PermitWithoutStream: true,
 		}),
 	}, options.DialOptions...)
-	conn, err := grpc.NewClient(address, dial...)
-	if err != nil {
-		return nil, fmt.Errorf("address %q: %w", address, err)
+	redial := func() (*grpc.ClientConn, error) {
+		conn, err := grpc.NewClient(address, dial...)
+		if err != nil {
+			return nil, fmt.Errorf("address %q: %w", address, err)
+		}
+		return conn, nil
 	}
-	return NewClient(conn), nil
+	conn, err := redial()
+	if err != nil {
+		return nil, err
+	}
+	c := NewClient(conn)
+	c.redial = redial
+	return c, nil
 }
 
 // NewClient returns the clients of a connection that the caller has made. Close
-// closes the connection.
+// closes the connection. Judge streams share it, and cannot leave it when it is dead.
 func NewClient(conn *grpc.ClientConn) *Client {
 	return &Client{
 		Particles:  kinegatev1.NewParticleServiceClient(conn),

@@ -13,5 +13,6 @@
 //		Form: &kinegatev1.DescribeReactionRequest_Reaction{Reaction: "gamma p -> K+ Lambda"},
 //	})
 //
-// Judge opens a judge stream and keeps its rules: credit, heartbeats and order.
+// Judge opens a judge stream and keeps its rules: credit, heartbeats and order. A stream
+// that breaks comes back by itself and loses nothing.
 package kinegate

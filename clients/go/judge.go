@@ -6,223 +6,324 @@ import (
 	"fmt"
 	"io"
 	"sync"
-	"sync/atomic"
 	"time"
 
-	"google.golang.org/grpc"
 	"google.golang.org/protobuf/proto"
 
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 )
 
-// JudgeStream is an open judge stream. Send and Recv may run on two goroutines;
-// neither may run on several at once. Reading must go on while sending, for the
-// verdicts return the credit that Send waits for.
-type JudgeStream struct {
-	// Opened is what the server answered to the opening.
-	Opened *kinegatev1.JudgeOpened
+// LatePolicy says what the gate decides on events that the server answered EXPIRED,
+// which is no judgement.
+type LatePolicy int
 
-	stream   grpc.BidiStreamingClient[kinegatev1.JudgeRequest, kinegatev1.JudgeResponse]
-	cancel   context.CancelFunc
-	verdicts chan *kinegatev1.VerdictBlock
+const (
+	// AcceptLate lets late events pass, so that none is lost.
+	AcceptLate LatePolicy = iota
+	// RejectLate drops late events.
+	RejectLate
+)
 
-	// sending serialises frames. It is apart from mu, since gRPC may hold a sender
-	// back until the receiver, which needs mu, has read on.
-	sending  sync.Mutex
-	lastSent atomic.Int64 // in ns of the Unix epoch
-
-	mu       sync.Mutex // guards what follows
-	credit   sync.Cond
-	sizes    []int64 // of the blocks without a verdict, oldest first
-	bytes    int64
-	next     int64 // sequence of the next block
-	answered int64
-	err      error // why the stream ended
-	ended    bool
-	draining bool
+// JudgeOptions say how a judge stream is kept up. The zero value is sound.
+type JudgeOptions struct {
+	// Late is what the gate bit of a late event is set to.
+	Late LatePolicy
+	// Queue is how many blocks may be on their way at once, from Send to Recv, over
+	// what the server's credit allows; 0 means twice the credit.
+	Queue int
+	// Silence is the time without any frame after which a connection is dead; 3 s if 0.
+	// The server sends a heartbeat every second.
+	Silence time.Duration
+	// Stuck is the time without any verdict on blocks that the server has, after which
+	// it is stuck; 3 s if 0. It doubles whenever it passes, in case blocks take longer.
+	Stuck time.Duration
+	// GiveUp is the time after a break in which the stream must be open again, else it
+	// ends; a minute if 0.
+	GiveUp time.Duration
+	// Broken is called with the reason after each break. Optional.
+	Broken func(error)
 }
 
-// heartbeatInterval is the silence after which a heartbeat goes out.
-const heartbeatInterval = time.Second
+// Times of the protocol and of its resumption.
+const (
+	heartbeatInterval = time.Second
+	defaultSilence    = 3 * time.Second
+	defaultGiveUp     = time.Minute
+	firstBackoff      = 50 * time.Millisecond
+	lastBackoff       = time.Second
+)
 
-// ErrDraining reports a stream that the server ended because it will leave. Every
-// block up to the last verdict received was answered; open a new stream with the
-// next sequence for the rest.
-var ErrDraining = errors.New("the server is about to leave")
-
-// Judge opens a judge stream. Cancelling ctx ends it at once.
-func (c *Client) Judge(ctx context.Context, open *kinegatev1.JudgeOpen) (*JudgeStream, error) {
-	ctx, cancel := context.WithCancel(ctx)
-	stream, err := c.Selections.Judge(ctx)
-	if err != nil {
-		cancel()
-		return nil, err
+// withDefaults fills in what is 0.
+func (o JudgeOptions) withDefaults(credit int64) JudgeOptions {
+	if o.Queue <= 0 {
+		o.Queue = 2 * int(max(credit, 1))
 	}
-	opened, err := openStream(stream, open)
+	if o.Silence <= 0 {
+		o.Silence = defaultSilence
+	}
+	if o.Stuck <= 0 {
+		o.Stuck = defaultSilence
+	}
+	if o.GiveUp <= 0 {
+		o.GiveUp = defaultGiveUp
+	}
+	return o
+}
+
+// JudgeStream is a judge stream that comes back when it breaks: it connects anew and
+// goes on with the first block without a verdict and with the digest of the selection
+// that it was opened with, so that the verdicts are those of a stream that never broke.
+//
+// Send and Recv may run on two goroutines; neither may run on several at once.
+// Receiving must go on while sending, for the queue between them is bounded.
+type JudgeStream struct {
+	// Opened is what the server answered to the first opening.
+	Opened *kinegatev1.JudgeOpened
+
+	client   *Client
+	open     *kinegatev1.JudgeOpen
+	options  JudgeOptions
+	ctx      context.Context //nolint:containedctx // the life of the stream, which is no call
+	cancel   context.CancelFunc
+	verdicts chan *kinegatev1.VerdictBlock
+	over     chan struct{}
+
+	mu      sync.Mutex // guards what follows
+	changed sync.Cond
+	// queue are the blocks without a verdict, oldest first; the link at hand was given
+	// the first sent of them. taking are the verdicts that Recv has not fetched.
+	queue  []outgoing
+	sent   int
+	taking int
+	next   int64 // sequence of the next block
+	closed bool  // by CloseSend
+	ended  bool
+	err    error // why it ended
+	// broken is when the stream broke for the first time since it last went well, zero
+	// while it does; backoff is how long the next attempt waits.
+	broken  time.Time
+	backoff time.Duration
+}
+
+// outgoing is a block without a verdict.
+type outgoing struct {
+	block *kinegatev1.EventBlock
+	bytes int64
+}
+
+// errSelectionChanged reports a server that judges with something else after a break.
+var errSelectionChanged = errors.New("after the break the server would judge with another selection")
+
+// Judge opens a judge stream. An opening that fails is not tried again. Cancelling ctx
+// ends the stream at once.
+func (c *Client) Judge(ctx context.Context, open *kinegatev1.JudgeOpen, options JudgeOptions) (*JudgeStream, error) {
+	ctx, cancel := context.WithCancel(ctx)
+	first, err := c.link(ctx, open, 0)
 	if err != nil {
 		cancel()
 		return nil, err
 	}
 	s := &JudgeStream{
-		Opened: opened, stream: stream, cancel: cancel,
-		verdicts: make(chan *kinegatev1.VerdictBlock, max(opened.GetCredit().GetBlockCount(), 1)),
-		next:     open.GetFirstSequence(), answered: open.GetFirstSequence() - 1,
+		Opened: first.opened, client: c, open: proto.CloneOf(open), ctx: ctx, cancel: cancel,
+		options: options.withDefaults(first.opened.GetCredit().GetBlockCount()),
+		over:    make(chan struct{}),
+		next:    open.GetFirstSequence(),
 	}
-	s.credit.L = &s.mu
-	s.lastSent.Store(time.Now().UnixNano())
-	go s.receive()
-	go s.beat(ctx)
+	s.verdicts = make(chan *kinegatev1.VerdictBlock, s.options.Queue)
+	s.changed.L = &s.mu
+	if named := s.open.GetSelection().GetNamed(); named != nil && !s.open.GetFollow() {
+		named.SelectionDigest = first.opened.GetSelectionDigest()
+	}
+	go s.run(first)
 	return s, nil
 }
 
-func openStream(stream grpc.BidiStreamingClient[kinegatev1.JudgeRequest, kinegatev1.JudgeResponse], open *kinegatev1.JudgeOpen) (*kinegatev1.JudgeOpened, error) {
-	request := &kinegatev1.JudgeRequest{Frame: &kinegatev1.JudgeRequest_Open{Open: open}}
-	if err := stream.Send(request); err != nil && !errors.Is(err, io.EOF) {
-		return nil, err
-	}
-	response, err := stream.Recv() // after an EOF of Send it holds the status
-	if err != nil {
-		return nil, err
-	}
-	if response.GetOpened() == nil {
-		return nil, fmt.Errorf("the server answered the opening with %T", response.GetFrame())
-	}
-	return response.GetOpened(), nil
-}
-
-// Send sends a block, whose sequence it sets, after waiting for the credit that it
-// costs. After the end of the stream it returns the reason.
+// Send queues a block, whose sequence it sets and which must not be changed before its
+// verdict. It waits while the queue is full. After the end of the stream it returns the
+// reason.
 func (s *JudgeStream) Send(block *kinegatev1.EventBlock) error {
-	if err := s.reserve(block); err != nil {
-		return err
-	}
-	return s.send(&kinegatev1.JudgeRequest{Frame: &kinegatev1.JudgeRequest_Block{Block: block}})
-}
-
-// reserve waits for the credit of a block and gives it the next sequence.
-func (s *JudgeStream) reserve(block *kinegatev1.EventBlock) error {
 	s.mu.Lock()
 	defer s.mu.Unlock()
-	block.Sequence = s.next
-	size := int64(proto.Size(block))
-	credit := s.Opened.GetCredit()
-	for !s.ended && (int64(len(s.sizes)) >= credit.GetBlockCount() || s.bytes+size > credit.GetByteCount() && len(s.sizes) > 0) {
-		s.credit.Wait()
+	for !s.ended && len(s.queue)+s.taking >= s.options.Queue {
+		s.changed.Wait()
 	}
 	if s.ended {
-		return s.reasonLocked()
+		return s.err
 	}
-	if s.draining {
-		return ErrDraining
+	if s.closed {
+		return errors.New("a block after CloseSend")
 	}
-	s.sizes = append(s.sizes, size)
-	s.bytes += size
+	block.Sequence = s.next
 	s.next++
+	s.queue = append(s.queue, outgoing{block, int64(proto.Size(block))})
+	s.changed.Broadcast()
 	return nil
 }
 
-// CloseSend says that no more blocks will come. Recv goes on until the last
-// verdict.
+// CloseSend says that no more blocks will come. Recv goes on until the last verdict.
 func (s *JudgeStream) CloseSend() error {
-	s.sending.Lock()
-	defer s.sending.Unlock()
-	return s.stream.CloseSend()
-}
-
-// Recv returns the next verdict block, in the order of the event blocks. At the end
-// it returns io.EOF after CloseSend, ErrDraining if the server left before, or the
-// status that ended the stream.
-func (s *JudgeStream) Recv() (*kinegatev1.VerdictBlock, error) {
-	if v, ok := <-s.verdicts; ok {
-		return v, nil
-	}
 	s.mu.Lock()
 	defer s.mu.Unlock()
-	return nil, s.reasonLocked()
-}
-
-// Close ends the stream at once.
-func (s *JudgeStream) Close() { s.cancel() }
-
-func (s *JudgeStream) reasonLocked() error {
-	if s.draining && errors.Is(s.err, io.EOF) {
-		return ErrDraining
-	}
-	return s.err
-}
-
-// send sends a frame; gRPC reports the end of a stream as io.EOF there and
-// the reason at Recv, so the receiver is left to find it.
-func (s *JudgeStream) send(request *kinegatev1.JudgeRequest) error {
-	s.sending.Lock()
-	defer s.sending.Unlock()
-	s.lastSent.Store(time.Now().UnixNano())
-	if err := s.stream.Send(request); err != nil && !errors.Is(err, io.EOF) {
-		return err
-	}
+	s.closed = true
+	s.changed.Broadcast()
 	return nil
 }
 
-// receive takes frames until the stream ends.
-func (s *JudgeStream) receive() {
-	defer close(s.verdicts)
-	for {
-		response, err := s.stream.Recv()
-		if err != nil {
-			s.mu.Lock()
-			s.err, s.ended = err, true
-			s.mu.Unlock()
-			s.credit.Broadcast()
-			s.cancel()
-			return
-		}
-		if v := response.GetVerdict(); v != nil {
-			s.settle(v.GetSequence())
-			// The channel has room for the whole credit.
-			s.verdicts <- v
-		}
-		if response.GetDraining() != nil {
-			s.mu.Lock()
-			s.draining = true
-			s.mu.Unlock()
-		}
-	}
-}
-
-// settle takes the credit of the oldest block back.
-func (s *JudgeStream) settle(sequence int64) {
+// Recv returns the next verdict block, in the order of the event blocks. At the end it
+// returns io.EOF after CloseSend, or why the stream ended.
+func (s *JudgeStream) Recv() (*kinegatev1.VerdictBlock, error) {
+	v, more := <-s.verdicts
 	s.mu.Lock()
 	defer s.mu.Unlock()
-	if len(s.sizes) > 0 {
-		s.bytes -= s.sizes[0]
-		s.sizes = s.sizes[1:]
+	if !more {
+		return nil, s.err
 	}
-	s.answered = sequence
-	s.credit.Broadcast()
+	s.taking--
+	s.changed.Broadcast()
+	return v, nil
 }
 
-// beat sends a heartbeat after a second without a frame.
-func (s *JudgeStream) beat(ctx context.Context) {
-	ticker := time.NewTicker(heartbeatInterval / 4)
-	defer ticker.Stop()
+// Close ends the stream at once and waits for its goroutines.
+func (s *JudgeStream) Close() {
+	s.cancel()
+	<-s.over
+}
+
+// run serves links until the stream is over.
+func (s *JudgeStream) run(l *link) {
+	defer close(s.over)
 	for {
-		select {
-		case <-ctx.Done():
-			return
-		case <-ticker.C:
+		begun := time.Now()
+		err := s.serve(l)
+		if time.Since(begun) > s.options.Silence {
+			s.wentWell()
 		}
-		if silence := time.Duration(time.Now().UnixNano() - s.lastSent.Load()); silence < heartbeatInterval {
-			continue
+		if s.done() {
+			s.end(io.EOF)
+			return
+		}
+		if s.ctx.Err() != nil || !passing(err) {
+			s.end(s.reason(err))
+			return
+		}
+		if s.options.Broken != nil {
+			s.options.Broken(err)
+		}
+		if l, err = s.resume(err); err != nil {
+			s.end(s.reason(err))
+			return
+		}
+	}
+}
+
+// done reports whether every block has its verdict and no more will come.
+func (s *JudgeStream) done() bool {
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	return s.closed && len(s.queue) == 0
+}
+
+// reason is the end of the context where that is why.
+func (s *JudgeStream) reason(err error) error {
+	if s.ctx.Err() != nil {
+		return context.Cause(s.ctx)
+	}
+	return err
+}
+
+func (s *JudgeStream) end(err error) {
+	s.mu.Lock()
+	s.err, s.ended = err, true
+	s.changed.Broadcast()
+	s.mu.Unlock()
+	close(s.verdicts)
+	s.cancel()
+}
+
+// wentWell forgets former breaks.
+func (s *JudgeStream) wentWell() {
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	s.broken = time.Time{}
+}
+
+// pause waits before an attempt to come back, not at all before the first one.
+func (s *JudgeStream) pause() (giveUp bool) {
+	s.mu.Lock()
+	if s.broken.IsZero() {
+		s.broken, s.backoff = time.Now(), firstBackoff
+		s.mu.Unlock()
+		return false
+	}
+	giveUp = time.Since(s.broken) > s.options.GiveUp
+	wait := jitter(s.backoff)
+	s.backoff = min(2*s.backoff, lastBackoff)
+	s.mu.Unlock()
+	if giveUp {
+		return true
+	}
+	timer := time.NewTimer(wait)
+	defer timer.Stop()
+	select {
+	case <-timer.C:
+	case <-s.ctx.Done():
+	}
+	return false
+}
+
+// resume opens the next link after a break, with the first block without a verdict.
+func (s *JudgeStream) resume(cause error) (*link, error) {
+	for err := cause; ; {
+		if giveUp := s.pause(); giveUp {
+			return nil, fmt.Errorf("giving up after %v: %w", s.options.GiveUp, err)
 		}
 		s.mu.Lock()
-		answered, ended := s.answered, s.ended
+		s.sent = 0
+		open := proto.CloneOf(s.open)
+		open.FirstSequence = s.next - int64(len(s.queue))
 		s.mu.Unlock()
-		if ended {
-			return
+		var l *link
+		l, err = s.client.link(s.ctx, open, s.options.Silence)
+		switch {
+		case err == nil && !s.open.GetFollow() && l.opened.GetSelectionDigest() != s.Opened.GetSelectionDigest():
+			l.close()
+			return nil, errSelectionChanged
+		case err == nil:
+			return l, nil
+		case s.ctx.Err() != nil || !passing(err):
+			return nil, err
 		}
-		// A failure shows at the next Send or Recv.
-		_ = s.send(&kinegatev1.JudgeRequest{Frame: &kinegatev1.JudgeRequest_Heartbeat{
-			Heartbeat: &kinegatev1.Heartbeat{ReceivedSequence: answered, AnsweredSequence: answered},
-		}})
+	}
+}
+
+// settle takes a verdict, which answers the oldest block, and hands it to Recv.
+func (s *JudgeStream) settle(v *kinegatev1.VerdictBlock) (bytes int64, err error) {
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	if s.sent == 0 || v.GetSequence() != s.queue[0].block.GetSequence() {
+		return 0, fmt.Errorf("%w: verdict %d was not due", errProtocol, v.GetSequence())
+	}
+	bytes = s.queue[0].bytes
+	s.queue[0] = outgoing{}
+	s.queue = s.queue[1:]
+	s.sent--
+	s.taking++
+	s.broken = time.Time{}
+	if s.options.Late == AcceptLate {
+		acceptLate(v)
+	}
+	// The channel has room for the whole queue.
+	s.verdicts <- v
+	s.changed.Broadcast()
+	return bytes, nil
+}
+
+// acceptLate sets the gate bit of every event that was late.
+func acceptLate(v *kinegatev1.VerdictBlock) {
+	const bitsPerByte = 8
+	for i, status := range v.GetStatuses() {
+		if kinegatev1.EventStatus(status) == kinegatev1.EventStatus_EVENT_STATUS_EXPIRED && i/bitsPerByte < len(v.GetGate()) {
+			v.Gate[i/bitsPerByte] |= 1 << (i % bitsPerByte)
+		}
 	}
 }

@@ -138,13 +138,17 @@ func (r *running) serve(t testing.TB) {
 // dial connects to a listener in memory.
 func (r *running) dial(t testing.TB, where string) *grpc.ClientConn {
 	t.Helper()
-	conn, err := grpc.NewClient("passthrough:memory", grpc.WithTransportCredentials(insecure.NewCredentials()),
-		grpc.WithContextDialer(func(ctx context.Context, _ string) (net.Conn, error) { return r.network.dial(ctx, where) }))
+	conn, err := grpc.NewClient("passthrough:memory", grpc.WithTransportCredentials(insecure.NewCredentials()), r.inMemory(where))
 	if err != nil {
 		t.Fatal(err)
 	}
 	t.Cleanup(func() { _ = conn.Close() })
 	return conn
+}
+
+// inMemory dials a listener in memory whatever the address.
+func (r *running) inMemory(where string) grpc.DialOption {
+	return grpc.WithContextDialer(func(ctx context.Context, _ string) (net.Conn, error) { return r.network.dial(ctx, where) })
 }
 
 // general connects to the general listener.

@@ -11,6 +11,7 @@ import (
 	"google.golang.org/grpc"
 	"google.golang.org/protobuf/proto"
 
+	"example.org/kinegate/clients/go/history"
 	"example.org/kinegate/proto/column"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 	"example.org/kinegate/service/api"
@@ -111,46 +112,6 @@ func nextVerdict(stream judgeClient) (*kinegatev1.VerdictBlock, error) {
 	}
 }
 
-// history checks what a caller saw: every sequence answered exactly once, in order.
-type history struct {
-	next    int64
-	problem string
-}
-
-func (h *history) add(sequence int64) {
-	if sequence != h.next && h.problem == "" {
-		h.problem = "answered " + itoa(sequence) + " where " + itoa(h.next) + " was due"
-	}
-	h.next = sequence + 1
-}
-
-func itoa(n int64) string { return string(appendInt(nil, n)) }
-
-func appendInt(b []byte, n int64) []byte {
-	if n < 0 {
-		return appendInt(append(b, '-'), -n)
-	}
-	if n >= 10 {
-		b = appendInt(b, n/10)
-	}
-	return append(b, byte('0'+n%10))
-}
-
-// TestHistoryFindsBreaches proves that the checker can fail.
-func TestHistoryFindsBreaches(t *testing.T) {
-	for name, sequences := range map[string][]int64{
-		"dropped": {5, 7}, "doubled": {5, 5}, "swapped": {6, 5}, "late start": {6},
-	} {
-		h := &history{next: 5}
-		for _, s := range sequences {
-			h.add(s)
-		}
-		if h.problem == "" {
-			t.Errorf("%s goes unnoticed", name)
-		}
-	}
-}
-
 func TestJudgeAnswersInOrder(t *testing.T) {
 	r := start(t)
 	const first, blocks, events = 41, 100, 300
@@ -161,6 +122,10 @@ func TestJudgeAnswersInOrder(t *testing.T) {
 		len(opened.GetHypotheses()) != 1 || opened.GetHypotheses()[0].GetObservables()[0] != "mass" {
 		t.Errorf("opened: %v", opened)
 	}
+	c := history.New(first)
+	for i := range int64(blocks) {
+		c.Sent(pairBlock(first+i, events))
+	}
 	credit := make(chan struct{}, opened.GetCredit().GetBlockCount())
 	go func() {
 		for i := range int64(blocks) {
@@ -169,7 +134,6 @@ func TestJudgeAnswersInOrder(t *testing.T) {
 		}
 		_ = stream.CloseSend()
 	}()
-	h := &history{next: first}
 	for {
 		v, err := nextVerdict(stream)
 		if errors.Is(err, io.EOF) {
@@ -179,7 +143,7 @@ func TestJudgeAnswersInOrder(t *testing.T) {
 			t.Fatal(err)
 		}
 		<-credit
-		h.add(v.GetSequence())
+		c.Answered(v)
 		if v.GetEventCount() != events || v.GetSelectionDigest() != opened.GetSelectionDigest() {
 			t.Fatalf("verdict %v", v)
 		}
@@ -189,8 +153,8 @@ func TestJudgeAnswersInOrder(t *testing.T) {
 			}
 		}
 	}
-	if h.problem != "" || h.next != first+blocks {
-		t.Errorf("%s; next %d", h.problem, h.next)
+	if faults := c.Faults(true); len(faults) > 0 {
+		t.Error(faults)
 	}
 	eventually(t, "events counted", func() bool { return r.metric(t, "kinegate_judge_events_total", "accepted") == blocks*events/3 })
 }

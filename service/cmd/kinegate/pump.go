@@ -26,7 +26,7 @@ func pump[T any](
 ) error {
 	ctx, cancel := context.WithCancel(ctx)
 	defer cancel()
-	stream, err := client.Judge(ctx, open)
+	stream, err := client.Judge(ctx, open, kinegate.JudgeOptions{})
 	if err != nil {
 		return err
 	}

@@ -1,0 +1,230 @@
+package server
+
+import (
+	"context"
+	"net"
+	"sync"
+	"sync/atomic"
+	"testing"
+	"time"
+
+	"google.golang.org/grpc"
+	"google.golang.org/grpc/test/bufconn"
+
+	kinegate "example.org/kinegate/clients/go"
+	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+)
+
+// line is a network line to a listener in memory that can fail in the ways of real ones.
+type line struct {
+	network *memory
+	where   string
+
+	mu    sync.Mutex
+	conns []*wire
+	dials int
+}
+
+// through makes a client connect over the line.
+func (l *line) through(o *kinegate.Options) {
+	o.DialOptions = []grpc.DialOption{grpc.WithContextDialer(func(ctx context.Context, _ string) (net.Conn, error) {
+		conn, err := l.target().dial(ctx, l.where)
+		if err != nil {
+			return nil, err
+		}
+		w := &wire{Conn: conn}
+		l.mu.Lock()
+		defer l.mu.Unlock()
+		l.conns = append(l.conns, w)
+		l.dials++
+		return w, nil
+	})}
+}
+
+// gateLine is a line to the gate of a server.
+func (r *running) gateLine() *line { return &line{network: r.network, where: r.options.GateAddress} }
+
+// target is where the line leads.
+func (l *line) target() *memory {
+	l.mu.Lock()
+	defer l.mu.Unlock()
+	return l.network
+}
+
+// lead makes new connections lead elsewhere.
+func (l *line) lead(to *memory) {
+	l.mu.Lock()
+	defer l.mu.Unlock()
+	l.network = to
+}
+
+// cut closes every open connection.
+func (l *line) cut() {
+	l.mu.Lock()
+	defer l.mu.Unlock()
+	for _, w := range l.conns {
+		_ = w.Close()
+	}
+	l.conns = nil
+}
+
+// swallow lets every open connection lose all bytes from now on without a sign, as a
+// firewall that forgot it does.
+func (l *line) swallow() {
+	l.mu.Lock()
+	defer l.mu.Unlock()
+	for _, w := range l.conns {
+		w.silent.Store(true)
+	}
+}
+
+// count is the number of connections made.
+func (l *line) count() int {
+	l.mu.Lock()
+	defer l.mu.Unlock()
+	return l.dials
+}
+
+// wire is a connection that can fall silent.
+type wire struct {
+	net.Conn
+
+	silent atomic.Bool
+}
+
+// Read loses what comes while the wire is silent.
+func (w *wire) Read(p []byte) (int, error) {
+	for {
+		n, err := w.Conn.Read(p)
+		if err != nil || !w.silent.Load() {
+			return n, err //nolint:wrapcheck // as it is
+		}
+	}
+}
+
+// Write loses what goes while the wire is silent.
+func (w *wire) Write(p []byte) (int, error) {
+	if w.silent.Load() {
+		return len(p), nil
+	}
+	return w.Conn.Write(p) //nolint:wrapcheck // as it is
+}
+
+// TestHistoryAcrossCuts cuts the connection again and again: each event is answered
+// exactly once, in order, with the bits of the uninterrupted run.
+func TestHistoryAcrossCuts(t *testing.T) {
+	r := start(t)
+	const events, perBlock, every = 20000, 100, 1300
+	c := learned(t, r, allEntries(), events)
+	l := r.gateLine()
+	var broken atomic.Int64
+	r.stream(t, r.client(t, l.through), allEntries(), kinegate.JudgeOptions{Broken: func(error) { broken.Add(1) }},
+		c, events, perBlock, func(from int) {
+			if from%every == 0 {
+				l.cut()
+			}
+		})
+	if broken.Load() < 5 || l.count() < 6 {
+		t.Errorf("%d breaks, %d connections", broken.Load(), l.count())
+	}
+	if counts := c.Counts(); counts.Answered != events || counts.Expired > 0 {
+		t.Errorf("%+v", counts)
+	}
+}
+
+// TestSilenceIsFoundInTime: a peer that loses everything without a sign is found within
+// 3.5 s, and the stream goes on over a connection of its own.
+func TestSilenceIsFoundInTime(t *testing.T) {
+	r := start(t)
+	const events, perBlock = 2000, 100
+	c := learned(t, r, allEntries(), events)
+	l := r.gateLine()
+	var lost, found time.Time
+	r.stream(t, r.client(t, l.through), allEntries(), kinegate.JudgeOptions{Broken: func(error) { found = time.Now() }},
+		c, events, perBlock, func(from int) {
+			if from == events/2 {
+				lost = time.Now()
+				l.swallow()
+			}
+		})
+	if took := found.Sub(lost); took <= 0 || took > 3500*time.Millisecond {
+		t.Errorf("found after %v", took)
+	}
+}
+
+// stuckServer opens streams and beats, and never answers.
+type stuckServer struct {
+	kinegatev1.UnimplementedSelectionServiceServer
+
+	opened *kinegatev1.JudgeOpened
+}
+
+func (s *stuckServer) Judge(stream grpc.BidiStreamingServer[kinegatev1.JudgeRequest, kinegatev1.JudgeResponse]) error {
+	response := &kinegatev1.JudgeResponse{Frame: &kinegatev1.JudgeResponse_Opened{Opened: s.opened}}
+	for {
+		if err := stream.Send(response); err != nil {
+			return err
+		}
+		response = &kinegatev1.JudgeResponse{Frame: &kinegatev1.JudgeResponse_Heartbeat{Heartbeat: &kinegatev1.Heartbeat{}}}
+		select {
+		case <-stream.Context().Done():
+			return nil
+		case <-time.After(time.Second):
+		}
+	}
+}
+
+// TestStuckServerIsFound: heartbeats alone do not pass for life.
+func TestStuckServerIsFound(t *testing.T) {
+	r := start(t)
+	const events = 500
+	c := learned(t, r, allEntries(), events)
+	_, opened := openJudge(t, r, allEntries())
+	stuck := &memory{listeners: map[string]*bufconn.Listener{}}
+	listener, _ := stuck.listen(t.Context(), "", r.options.GateAddress)
+	bare := grpc.NewServer()
+	kinegatev1.RegisterSelectionServiceServer(bare, &stuckServer{opened: opened})
+	go func() { _ = bare.Serve(listener) }()
+	defer bare.Stop()
+	l := &line{network: stuck, where: r.options.GateAddress}
+	var begun, found time.Time
+	r.stream(t, r.client(t, l.through), allEntries(), kinegate.JudgeOptions{Broken: func(error) {
+		found = time.Now()
+		l.lead(r.network)
+	}}, c, events, 100, func(from int) {
+		if from == 0 {
+			begun = time.Now()
+		}
+	})
+	if took := found.Sub(begun); took <= 0 || took > 3500*time.Millisecond {
+		t.Errorf("found after %v", took)
+	}
+}
+
+// TestHistoryAcrossDrains: servers leave one after the other while a stream goes on.
+func TestHistoryAcrossDrains(t *testing.T) {
+	a := start(t)
+	const events, perBlock = 9000, 100
+	c := learned(t, a, allEntries(), events)
+	l := a.gateLine()
+	b := start(t)
+	third := start(t)
+	left := make(chan error, 2)
+	leave := func(from, to *running) {
+		l.lead(to.network)
+		go func() { left <- from.Shutdown(context.Background()) }() // the server's own options bound it
+	}
+	a.stream(t, a.client(t, l.through), allEntries(), kinegate.JudgeOptions{}, c, events, perBlock, func(from int) {
+		switch from {
+		case events / 3:
+			leave(a, b)
+		case 2 * events / 3:
+			leave(b, third)
+		}
+	})
+	for range 2 {
+		if err := <-left; err != nil {
+			t.Errorf("Shutdown: %v", err)
+		}
+	}
+}
