@@ -12,6 +12,7 @@ import (
 	"google.golang.org/grpc/test/bufconn"
 
 	kinegate "example.org/kinegate/clients/go"
+	"example.org/kinegate/clients/go/history"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 )
 
@@ -115,15 +116,18 @@ func (w *wire) Write(p []byte) (int, error) {
 func TestHistoryAcrossCuts(t *testing.T) {
 	r := start(t)
 	const events, perBlock, every = 20000, 100, 1300
-	c := learned(t, r, allEntries(), events)
+	c := learned(t, r, history.AllEntries(), events)
 	l := r.gateLine()
 	var broken atomic.Int64
-	r.stream(t, r.client(t, l.through), allEntries(), kinegate.JudgeOptions{Broken: func(error) { broken.Add(1) }},
-		c, events, perBlock, func(from int) {
+	verify(t, c, history.Run{
+		Client: r.client(t, l.through), Open: history.AllEntries(), Events: events, PerBlock: perBlock,
+		Options: kinegate.JudgeOptions{Broken: func(error) { broken.Add(1) }},
+		Before: func(from int) {
 			if from%every == 0 {
 				l.cut()
 			}
-		})
+		},
+	})
 	if broken.Load() < 5 || l.count() < 6 {
 		t.Errorf("%d breaks, %d connections", broken.Load(), l.count())
 	}
@@ -137,16 +141,19 @@ func TestHistoryAcrossCuts(t *testing.T) {
 func TestSilenceIsFoundInTime(t *testing.T) {
 	r := start(t)
 	const events, perBlock = 2000, 100
-	c := learned(t, r, allEntries(), events)
+	c := learned(t, r, history.AllEntries(), events)
 	l := r.gateLine()
 	var lost, found time.Time
-	r.stream(t, r.client(t, l.through), allEntries(), kinegate.JudgeOptions{Broken: func(error) { found = time.Now() }},
-		c, events, perBlock, func(from int) {
+	verify(t, c, history.Run{
+		Client: r.client(t, l.through), Open: history.AllEntries(), Events: events, PerBlock: perBlock,
+		Options: kinegate.JudgeOptions{Broken: func(error) { found = time.Now() }},
+		Before: func(from int) {
 			if from == events/2 {
 				lost = time.Now()
 				l.swallow()
 			}
-		})
+		},
+	})
 	if took := found.Sub(lost); took <= 0 || took > 3500*time.Millisecond {
 		t.Errorf("found after %v", took)
 	}
@@ -178,8 +185,8 @@ func (s *stuckServer) Judge(stream grpc.BidiStreamingServer[kinegatev1.JudgeRequ
 func TestStuckServerIsFound(t *testing.T) {
 	r := start(t)
 	const events = 500
-	c := learned(t, r, allEntries(), events)
-	_, opened := openJudge(t, r, allEntries())
+	c := learned(t, r, history.AllEntries(), events)
+	_, opened := openJudge(t, r, history.AllEntries())
 	stuck := &memory{listeners: map[string]*bufconn.Listener{}}
 	listener, _ := stuck.listen(t.Context(), "", r.options.GateAddress)
 	bare := grpc.NewServer()
@@ -188,13 +195,17 @@ func TestStuckServerIsFound(t *testing.T) {
 	defer bare.Stop()
 	l := &line{network: stuck, where: r.options.GateAddress}
 	var begun, found time.Time
-	r.stream(t, r.client(t, l.through), allEntries(), kinegate.JudgeOptions{Broken: func(error) {
-		found = time.Now()
-		l.lead(r.network)
-	}}, c, events, 100, func(from int) {
-		if from == 0 {
-			begun = time.Now()
-		}
+	verify(t, c, history.Run{
+		Client: r.client(t, l.through), Open: history.AllEntries(), Events: events, PerBlock: 100,
+		Options: kinegate.JudgeOptions{Broken: func(error) {
+			found = time.Now()
+			l.lead(r.network)
+		}},
+		Before: func(from int) {
+			if from == 0 {
+				begun = time.Now()
+			}
+		},
 	})
 	if took := found.Sub(begun); took <= 0 || took > 3500*time.Millisecond {
 		t.Errorf("found after %v", took)
@@ -205,7 +216,7 @@ func TestStuckServerIsFound(t *testing.T) {
 func TestHistoryAcrossDrains(t *testing.T) {
 	a := start(t)
 	const events, perBlock = 9000, 100
-	c := learned(t, a, allEntries(), events)
+	c := learned(t, a, history.AllEntries(), events)
 	l := a.gateLine()
 	b := start(t)
 	third := start(t)
@@ -214,13 +225,16 @@ func TestHistoryAcrossDrains(t *testing.T) {
 		l.lead(to.network)
 		go func() { left <- from.Shutdown(context.Background()) }() // the server's own options bound it
 	}
-	a.stream(t, a.client(t, l.through), allEntries(), kinegate.JudgeOptions{}, c, events, perBlock, func(from int) {
-		switch from {
-		case events / 3:
-			leave(a, b)
-		case 2 * events / 3:
-			leave(b, third)
-		}
+	verify(t, c, history.Run{
+		Client: a.client(t, l.through), Open: history.AllEntries(), Events: events, PerBlock: perBlock,
+		Before: func(from int) {
+			switch from {
+			case events / 3:
+				leave(a, b)
+			case 2 * events / 3:
+				leave(b, third)
+			}
+		},
 	})
 	for range 2 {
 		if err := <-left; err != nil {

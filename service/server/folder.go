@@ -9,6 +9,7 @@ import (
 	"os"
 	"path/filepath"
 	"slices"
+	"sync"
 	"time"
 
 	"github.com/rs/zerolog"
@@ -31,8 +32,9 @@ type folder struct {
 	path    string
 	library *api.Library
 	metrics *telemetry.Metrics
-	log     zerolog.Logger
+	log     func() *zerolog.Logger
 
+	mu sync.Mutex // guards the rest
 	// sums are the contents of the files when last read, owners the file or setting
 	// that each name belongs to, bad the files that are not in use as they are.
 	sums   map[string][sha256.Size]byte
@@ -42,7 +44,7 @@ type folder struct {
 
 // loadFolder reads the folder for the first time; taken are the names that selection
 // files have already. Every file must be sound.
-func loadFolder(path string, library *api.Library, taken []string, metrics *telemetry.Metrics, log zerolog.Logger) (*folder, error) {
+func loadFolder(path string, library *api.Library, taken []string, metrics *telemetry.Metrics, log func() *zerolog.Logger) (*folder, error) {
 	f := &folder{
 		path: path, library: library, metrics: metrics, log: log,
 		sums: map[string][sha256.Size]byte{}, owners: map[string]string{}, bad: map[string]bool{},
@@ -72,16 +74,18 @@ func (f *folder) watch(ctx context.Context) {
 func (f *folder) refresh() {
 	changed, err := f.reread()
 	if err != nil {
-		f.log.Error().Err(err).Msg("a file of selections is bad, its old version stays in use")
+		f.log().Error().Err(err).Msg("a file of selections is bad, its old version stays in use")
 	}
 	for _, v := range changed {
-		f.log.Info().Str("selection", v.Name()).Str("selection_digest", v.Digest()).Msg("a selection has changed, the new version is in use")
+		f.log().Info().Str("selection", v.Name()).Str("selection_digest", v.Digest()).Msg("a selection has changed, the new version is in use")
 	}
 }
 
 // reread takes all files that have changed and are sound into use at once. Bad ones are
 // reported when they have changed and keep the metric down until they are mended.
 func (f *folder) reread() (changed []api.Version, err error) {
+	f.mu.Lock()
+	defer f.mu.Unlock()
 	files, err := f.files()
 	if err != nil {
 		f.metrics.SelectionsReloaded(false)

@@ -1,0 +1,68 @@
+package server
+
+import (
+	"fmt"
+	"runtime"
+	"testing"
+
+	"google.golang.org/protobuf/proto"
+
+	"example.org/kinegate/clients/go/history"
+	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+)
+
+// TestBitsDoNotDependOnBlocksOrWorkers judges the sample in blocks of several sizes,
+// with one worker and with several to a block.
+func TestBitsDoNotDependOnBlocksOrWorkers(t *testing.T) {
+	before := runtime.GOMAXPROCS(0)
+	defer runtime.GOMAXPROCS(before)
+	for _, workers := range []int{1, 4} {
+		runtime.GOMAXPROCS(workers)
+		r := start(t)
+		for _, perBlock := range []int{1, 7, 1000, 4096} {
+			t.Run(fmt.Sprintf("%d workers, blocks of %d", workers, perBlock), func(t *testing.T) {
+				events := min(9000, 400*perBlock)
+				runtime.GOMAXPROCS(1)
+				c := learned(t, r, history.AllEntries(), events)
+				runtime.GOMAXPROCS(workers)
+				verify(t, c, history.Run{Client: r.client(t), Open: history.AllEntries(), Events: events, PerBlock: perBlock})
+			})
+		}
+	}
+}
+
+// TestUnaryAndStreamAgree: JudgeBlock says what the stream says.
+func TestUnaryAndStreamAgree(t *testing.T) {
+	r := start(t)
+	const events = 1000
+	open := history.AllEntries()
+	c := learned(t, r, open, events)
+	block := history.Photons(0, events)
+	c.Sent(block)
+	reply, err := kinegatev1.NewSelectionServiceClient(r.general(t)).JudgeBlock(t.Context(), &kinegatev1.JudgeBlockRequest{
+		Selection: open.GetSelection(), Entries: open.GetEntries(), Block: block,
+	})
+	if err != nil {
+		t.Fatal(err)
+	}
+	c.Answered(reply.GetVerdict())
+	if faults := c.Faults(true); len(faults) > 0 {
+		t.Error(faults)
+	}
+}
+
+// TestOverloadIsSaid: with more work than the latency budget allows, each event is
+// still answered, judged or EXPIRED, and those judged have their bits.
+func TestOverloadIsSaid(t *testing.T) {
+	r := start(t)
+	const events = 40000
+	c := learned(t, r, history.AllEntries(), events)
+	open := history.AllEntries()
+	// A block of 4,000 takes longer than this, so that its end is late.
+	open.LatencyBudgetS = proto.Float64(0.001)
+	verify(t, c, history.Run{Client: r.client(t), Open: open, Events: events, PerBlock: 4000})
+	counts := c.Counts()
+	if counts.Expired == 0 || counts.Expired == events || counts.Answered != events {
+		t.Errorf("%+v", counts)
+	}
+}

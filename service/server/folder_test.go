@@ -1,0 +1,173 @@
+package server
+
+import (
+	"os"
+	"path/filepath"
+	"slices"
+	"strconv"
+	"strings"
+	"testing"
+
+	kinegate "example.org/kinegate/clients/go"
+	"example.org/kinegate/clients/go/history"
+	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+)
+
+// pairsFile is a selection file; the upper limit makes versions.
+func pairsFile(name string, maximum float64) []byte {
+	return []byte("name: " + name + "\nhypotheses:\n  - name: pair\n    reaction: \"pi0 -> gamma gamma\"\n    extra_objects: {any: {}}\n" +
+		"    condition:\n      window:\n        invariant_mass: {products: [\"gamma[0]\", \"gamma[1]\"], min_gev: 0.1, max_gev: " +
+		strconv.FormatFloat(maximum, 'g', -1, 64) + "}\n")
+}
+
+// put replaces a file as editors and orchestrators do: all at once.
+func put(t *testing.T, path string, data []byte) {
+	t.Helper()
+	writeFile(t, path+".new", data)
+	if err := os.Rename(path+".new", path); err != nil {
+		t.Fatal(err)
+	}
+}
+
+func namedPairs(follow bool) *kinegatev1.JudgeOpen {
+	return &kinegatev1.JudgeOpen{
+		Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Named{Named: &kinegatev1.SelectionReference{Name: "pairs"}}},
+		Follow:    follow,
+	}
+}
+
+// TestReloadMidStream: a stream keeps the selection it was opened with, over a reload
+// and a break; one that follows takes the new one at a block boundary, once.
+func TestReloadMidStream(t *testing.T) {
+	path := t.TempDir()
+	file := filepath.Join(path, "pairs.yaml")
+	writeFile(t, file, pairsFile("pairs", 0.16))
+	r := start(t, func(o *Options, _ *Deps) { o.SelectionFolder = path })
+	const events, perBlock = 4000, 100
+	before := learned(t, r, namedPairs(false), events)
+	follower := learned(t, r, namedPairs(false), events/2)
+	l := r.gateLine()
+	reload := func(from int) {
+		if from == events/2 {
+			put(t, file, pairsFile("pairs", 0.2))
+			r.folder.refresh()
+			l.cut()
+		}
+	}
+	digests := map[string]bool{}
+	verify(t, before, history.Run{
+		Client: r.client(t, l.through), Open: namedPairs(false), Events: events, PerBlock: perBlock, Before: reload,
+		Answered: func(v *kinegatev1.VerdictBlock) { digests[v.GetSelectionDigest()] = true },
+	})
+	if len(digests) != 1 {
+		t.Errorf("%d digests on a stream that does not follow", len(digests))
+	}
+	// Back to the first version for the one that follows.
+	put(t, file, pairsFile("pairs", 0.16))
+	r.folder.refresh()
+	var order []string
+	verify(t, follower, history.Run{
+		Client: r.client(t), Open: namedPairs(true), Events: events / 2, PerBlock: perBlock,
+		Options: kinegate.JudgeOptions{Queue: 1},
+		Answered: func(v *kinegatev1.VerdictBlock) {
+			if n := len(order); n == 0 || order[n-1] != v.GetSelectionDigest() {
+				order = append(order, v.GetSelectionDigest())
+			}
+		},
+	})
+	stream, err := r.client(t).Judge(t.Context(), namedPairs(true), kinegate.JudgeOptions{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer stream.Close()
+	for i := range 10 {
+		if i == 5 {
+			put(t, file, pairsFile("pairs", 0.2))
+			r.folder.refresh()
+		}
+		if err := stream.Send(history.Photons(i*perBlock, perBlock)); err != nil {
+			t.Fatal(err)
+		}
+		v, err := stream.Recv()
+		if err != nil {
+			t.Fatal(err)
+		}
+		if n := len(order); order[n-1] != v.GetSelectionDigest() {
+			if i != 5 {
+				t.Errorf("the selection changes at block %d", i)
+			}
+			order = append(order, v.GetSelectionDigest())
+		}
+	}
+	if len(order) != 2 || !digests[order[0]] {
+		t.Errorf("digests %v", order)
+	}
+}
+
+// TestBadFilesKeepTheOldVersion, with log and metric, and are forgiven once mended.
+func TestBadFilesKeepTheOldVersion(t *testing.T) {
+	path := t.TempDir()
+	file := filepath.Join(path, "pairs.yaml")
+	writeFile(t, file, pairsFile("pairs", 0.16))
+	writeFile(t, filepath.Join(path, "notes.txt"), []byte("not read"))
+	r := start(t, func(o *Options, _ *Deps) { o.SelectionFolder = path })
+	info := func() []string {
+		reply, err := kinegatev1.NewInfoServiceClient(r.general(t)).GetInfo(t.Context(), &kinegatev1.GetInfoRequest{})
+		if err != nil {
+			t.Fatal(err)
+		}
+		var names []string
+		for _, s := range reply.GetSelections() {
+			names = append(names, s.GetName()+" "+strconv.Itoa(len(s.GetDigests())))
+		}
+		return names
+	}
+	step := func(what string, good float64, names ...string) {
+		t.Helper()
+		r.folder.refresh()
+		if got := r.metric(t, "kinegate_selection_reload_success"); got != good {
+			t.Errorf("%s: metric %v", what, got)
+		}
+		if got := info(); !slices.Equal(got, names) {
+			t.Errorf("%s: %v", what, got)
+		}
+	}
+	step("start", 1, "pairs 1")
+	put(t, file, []byte("name: pairs\nhypotheses: [{name: pair, reaction: \"pi0 -> gama\"}]\n"))
+	step("bad", 0, "pairs 1")
+	if !strings.Contains(r.log.String(), "gama") {
+		t.Errorf("log: %s", r.log.String())
+	}
+	step("still bad", 0, "pairs 1")
+	if n := strings.Count(r.log.String(), "gama"); n != 1 {
+		t.Errorf("%d log lines about one bad file", n)
+	}
+	other := filepath.Join(path, "other.yml")
+	put(t, other, pairsFile("pairs", 0.17))
+	step("a name twice", 0, "pairs 1")
+	put(t, other, pairsFile("others", 0.17))
+	step("another beside a bad one", 0, "others 1", "pairs 1")
+	put(t, file, pairsFile("pairs", 0.18))
+	step("mended", 1, "others 1", "pairs 2")
+	if err := os.Remove(other); err != nil {
+		t.Fatal(err)
+	}
+	step("a file gone", 1, "others 1", "pairs 2")
+}
+
+// TestBadFolderRefusesToStart names the setting.
+func TestBadFolderRefusesToStart(t *testing.T) {
+	for name, prepare := range map[string]func(path string) string{
+		"no folder": func(path string) string { return filepath.Join(path, "none") },
+		"bad file": func(path string) string {
+			writeFile(t, filepath.Join(path, "a.yaml"), []byte("name: a\n"))
+			return path
+		},
+	} {
+		o := quick()
+		o.SelectionFolder = prepare(t.TempDir())
+		if _, err := New(o, Deps{}); err == nil {
+			t.Errorf("%s: it starts", name)
+		}
+	}
+}
