@@ -84,8 +84,10 @@ func (s *reactionService) search(request *kinegatev1.ListOpenChannelsRequest) (r
 	}
 	search := reaction.Search{
 		State: form.state, SpinAndC: request.GetWithSpinCBose(),
-		MinBodies: f.bodies("min_body_count", request.GetMinBodyCount()),
 		MaxBodies: f.bodies("max_body_count", request.GetMaxBodyCount()),
+	}
+	if search.MinBodies = f.bodies("min_body_count", request.GetMinBodyCount()); request.GetMinBodyCount() == 0 {
+		search.MinBodies = min(search.MinBodies, search.MaxBodies)
 	}
 	if search.MinBodies > search.MaxBodies {
 		f.need("min_body_count", strconv.Itoa(search.MinBodies), "at most max_body_count, "+strconv.Itoa(search.MaxBodies))

@@ -140,7 +140,7 @@ func dalitzChannels(r *reaction.Reaction, request *kinegatev1.TraceDalitzBoundar
 	for i, w := range energies {
 		channel, err := reaction.Describe(r, reaction.InitialState{Kind: reaction.TotalMass, SqrtS: w})
 		if err != nil {
-			return nil, atField(index("sqrt_s_gev", i), Explain(err))
+			return nil, moved(err, index("sqrt_s_gev", i))
 		}
 		channels = append(channels, channel)
 	}

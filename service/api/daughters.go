@@ -158,14 +158,14 @@ func pairs(m *kinegatev1.DescribeDecayResponse, two *decay.TwoBody, request *kin
 	for i, cosine := range request.GetRestFrameCosines() {
 		pair, err := two.At(cosine)
 		if err != nil {
-			return atField(index("rest_frame_cosines", i), Explain(err))
+			return moved(err, index("rest_frame_cosines", i))
 		}
 		m.RestFramePairs = append(m.RestFramePairs, pairMessage(&pair))
 	}
 	for i, angle := range request.GetLaboratoryAnglesRad() {
 		found, err := two.AtLabAngle(0, angle)
 		if err != nil {
-			return atField(index("laboratory_angles_rad", i), Explain(err))
+			return moved(err, index("laboratory_angles_rad", i))
 		}
 		solution := &kinegatev1.DecaySolution{}
 		for k := range found {
@@ -201,11 +201,11 @@ func openingAngles(m *kinegatev1.DescribeDecayResponse, parent decay.Parent, ang
 	for i, angle := range angles {
 		density, err := photons.OpeningDensity(angle)
 		if err != nil {
-			return atField(index("opening_angles_rad", i), Explain(err))
+			return moved(err, index("opening_angles_rad", i))
 		}
 		below, err := photons.OpeningFraction(angle)
 		if err != nil {
-			return atField(index("opening_angles_rad", i), Explain(err))
+			return moved(err, index("opening_angles_rad", i))
 		}
 		m.OpeningAngles = append(m.OpeningAngles, &kinegatev1.OpeningAngleDensity{
 			DensityPerRad: finite(density), FractionBelow: below,

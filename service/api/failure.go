@@ -104,6 +104,17 @@ func atField(field string, f *Failure) *Failure {
 	return &c
 }
 
+// moved returns the fault of the core with another field path, in its sentence too.
+func moved(err error, field string) error {
+	e, ok := errors.AsType[*fault.Error](err)
+	if !ok {
+		return atField(field, Explain(err))
+	}
+	c := *e
+	c.Field = field
+	return &c
+}
+
 // Error returns the message.
 func (f *Failure) Error() string { return string(f.Reason) + ": " + f.Message }
 

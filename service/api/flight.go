@@ -37,7 +37,7 @@ func describeFlight(
 	for i, d := range request.GetDistancesM() {
 		fraction, err := flight.Surviving(d)
 		if err != nil {
-			return atField(index("distances_m", i), Explain(err))
+			return moved(err, index("distances_m", i))
 		}
 		m.SurvivingFractions = append(m.SurvivingFractions, fraction)
 	}

@@ -55,7 +55,7 @@ func (s *reactionService) body(m *kinegatev1.ConvertMotionResponse, request *kin
 	case *kinegatev1.ConvertMotionRequest_Particle:
 		p, err := s.table.Named(body.Particle)
 		if err != nil {
-			return atField("particle", Explain(err))
+			return moved(err, "particle")
 		}
 		if c := request.GetChargeThirds(); c != 0 {
 			return fault.New(fault.Invalid, "charge_thirds", strconv.Itoa(int(c)), "0 beside a particle, which has its own")
@@ -168,7 +168,7 @@ func cherenkovLights(motion *momentum.Motion, charged bool, indices []float64) (
 	for i, n := range indices {
 		c, err := motion.Cherenkov(n)
 		if err != nil {
-			return nil, atField(index(field, i), Explain(err))
+			return nil, moved(err, index(field, i))
 		}
 		m := &kinegatev1.CherenkovLight{RefractiveIndex: n}
 		list = append(list, m)

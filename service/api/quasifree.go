@@ -22,7 +22,7 @@ func quasiFree(
 	}
 	nucleus, err := table.Named(asked.GetNucleus())
 	if err != nil {
-		return nil, atField(field+".nucleus", Explain(err))
+		return nil, moved(err, field+".nucleus")
 	}
 	q, err := reaction.BoundNucleon(table, r, nucleus, asked.GetFermiMomentumGev())
 	if err != nil {

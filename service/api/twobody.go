@@ -2,6 +2,7 @@ package api
 
 import (
 	"context"
+	"errors"
 	"math"
 	"strconv"
 
@@ -79,7 +80,7 @@ func (s *reactionService) twoBodyQuery(
 ) (query reaction.Query, field string, err error) {
 	if reference := request.GetProduct(); reference != "" {
 		if query.Product, err = placeOf(s.table, r, reference); err != nil {
-			return query, "", atField("product", Explain(err))
+			return query, "", moved(err, "product")
 		}
 	}
 	for _, list := range []struct {
@@ -145,15 +146,14 @@ func solveTwoBody(
 }
 
 // atValue puts the field of the values in the place of the core's name of a value in a
-// chunk.
-func atValue(err error, field string, from int) *Failure {
-	f := atField(field, Explain(err))
-	for i, v := range Explain(err).Violations {
-		if n, ok := elementOf(v.Field, "query.values"); ok {
-			f.Violations[i].Field = index(field, from+n)
+// chunk, or of the variable.
+func atValue(err error, field string, from int) error {
+	if e, ok := errors.AsType[*fault.Error](err); ok {
+		if n, ok := elementOf(e.Field, "query.values"); ok {
+			field = index(field, from+n)
 		}
 	}
-	return f
+	return moved(err, field)
 }
 
 // elementOf reads the index of an element of a list from its path.

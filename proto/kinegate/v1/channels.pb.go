@@ -115,8 +115,9 @@ type ListOpenChannelsRequest struct {
 	// stable against the strong decay, with eta, omega, eta' and phi, and without
 	// neutrinos unless a lepton collides.
 	Products []string `protobuf:"bytes,3,rep,name=products,proto3" json:"products,omitempty"`
-	// Least number of bodies, within [1, 5]; 0 means 2. One body alone is reached
-	// only at the one energy at which s is its mass squared.
+	// Least number of bodies, within [1, 5]; 0 means 2, or max_body_count where that
+	// is 1. One body alone is reached only at the one energy at which s is its mass
+	// squared.
 	MinBodyCount int32 `protobuf:"varint,4,opt,name=min_body_count,json=minBodyCount,proto3" json:"min_body_count,omitempty"`
 	// Largest number of bodies, within [1, 5]; 0 means 2.
 	MaxBodyCount int32 `protobuf:"varint,5,opt,name=max_body_count,json=maxBodyCount,proto3" json:"max_body_count,omitempty"`

@@ -61,17 +61,23 @@ func TestExitCodes(t *testing.T) {
 		{`reaction --nonsense`, exitUsage, "unknown flag"},
 		{`--help`, exitWell, "never a safety system"},
 	} {
-		t.Run(c.arguments, func(t *testing.T) {
-			t.Parallel()
-			code, out, errs := command(t, shellWords(c.arguments)...)
-			if code != c.code || !strings.Contains(out+errs, c.says) {
-				t.Errorf("code %d, want %d with %q; says\n%s%s", code, c.code, c.says, out, errs)
-			}
-			if code == exitUsage && !strings.HasPrefix(errs, "kinegate: ") {
-				t.Errorf("the error is not on the standard error: %q", errs)
-			}
-		})
+		wantCommand(t, c.arguments, c.code, c.says)
 	}
+}
+
+// wantCommand runs a command line and wants its code and a part of what it says.
+func wantCommand(t *testing.T, line string, want int, says string) {
+	t.Helper()
+	t.Run(line, func(t *testing.T) {
+		t.Parallel()
+		code, out, errs := command(t, shellWords(line)...)
+		if code != want || !strings.Contains(out+errs, says) {
+			t.Errorf("code %d, want %d with %q; says\n%s%s", code, want, says, out, errs)
+		}
+		if code == exitUsage && !strings.HasPrefix(errs, "kinegate: ") {
+			t.Errorf("the error is not on the standard error: %q", errs)
+		}
+	})
 }
 
 // TestJSONIsTheReply reads what --json prints as the reply's own message.

@@ -73,6 +73,16 @@ func (i *initialFlags) initialState(reaction string) (*kinegatev1.InitialState, 
 	return &kinegatev1.InitialState{Kind: &kinegatev1.InitialState_TwoBeams{TwoBeams: two}}, nil
 }
 
+// required is initialState where one must be given.
+func (i *initialFlags) required(reaction string) (*kinegatev1.InitialState, error) {
+	state, err := i.initialState(reaction)
+	if err == nil && state == nil {
+		return nil, badInput("say how the initial particles move: --beam, --beam-kinetic or --beam-momentum, with the same\n" +
+			"of --beam2 for a second beam in place of a target at rest; or --sqrt-s")
+	}
+	return state, err
+}
+
 // motion reads the three flags of one beam; nil where none was given.
 func motion(flag, total, kinetic, momentum string, photon bool) (*kinegatev1.BeamMotion, error) {
 	given := 0

@@ -78,7 +78,13 @@ func commands(p program) []*cobra.Command {
 	return []*cobra.Command{
 		particleCommand(p),
 		reactionCommand(p),
+		twoBodyCommand(p),
+		channelsCommand(p),
 		decayCommand(p),
+		photonCommand(p),
+		photonFieldCommand(p),
+		dalitzCommand(p),
+		motionCommand(p),
 		checkCommand(p),
 		judgeCommand(p),
 		demoCommand(p),

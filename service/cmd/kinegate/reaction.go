@@ -15,19 +15,28 @@ import (
 func reactionCommand(p program) *cobra.Command {
 	e := newEnvironment(p)
 	initial := &initialFlags{}
+	extra := &reactionFlags{}
 	c := &cobra.Command{
 		Use:   "reaction TEXT",
 		Short: "Say whether a channel is open and where its products go",
 		Long: "reaction says whether a channel is open at an energy, how far above or below threshold\n" +
 			"it is, and where each product can go. Without an energy it gives the threshold.\n" +
-			"It exits with 0 if the channel can be reached and with 3 if it is closed.",
+			"It exits with 0 if the channel can be reached, on a free or bound target, else with 3.",
 		Example: `  kinegate reaction "gamma p -> K+ Lambda, Lambda -> p pi-" --beam "1.2 GeV"
   kinegate reaction "gamma gamma -> e+ e-" --beam "1.0 MeV" --beam2 "0.5 MeV" --angle "180 deg"
-  kinegate reaction "gamma p -> p eta"`,
+  kinegate reaction "gamma p -> p eta"
+  kinegate reaction "gamma p -> p pi+ pi-" --beam "2 GeV" --t "beam, pi+ pi-" --volume
+  kinegate reaction "gamma p -> p eta" --beam "680 MeV" --nucleus d --fermi "250 MeV"`,
 		Args: usage(cobra.ExactArgs(1)),
 		RunE: func(c *cobra.Command, args []string) error {
-			state, err := initial.initialState(args[0])
-			if err != nil {
+			request := &kinegatev1.DescribeReactionRequest{
+				Form: &kinegatev1.DescribeReactionRequest_Reaction{Reaction: args[0]},
+			}
+			var err error
+			if request.InitialState, err = initial.initialState(args[0]); err != nil {
+				return err
+			}
+			if err := extra.read(request); err != nil {
 				return err
 			}
 			client, closeClient, err := e.connect(c.Context())
@@ -37,10 +46,7 @@ func reactionCommand(p program) *cobra.Command {
 			defer closeClient()
 			ctx, cancel := e.calling(c.Context())
 			defer cancel()
-			reply, err := client.Reactions.DescribeReaction(ctx, &kinegatev1.DescribeReactionRequest{
-				Form:         &kinegatev1.DescribeReactionRequest_Reaction{Reaction: args[0]},
-				InitialState: state,
-			})
+			reply, err := client.Reactions.DescribeReaction(ctx, request)
 			if err != nil {
 				return underline(err, args[0])
 			}
@@ -51,7 +57,8 @@ func reactionCommand(p program) *cobra.Command {
 					return err
 				}
 			}
-			if reply.GetState() == kinegatev1.ChannelState_CHANNEL_STATE_CLOSED {
+			const open = kinegatev1.ChannelState_CHANNEL_STATE_OPEN
+			if reply.GetState() == kinegatev1.ChannelState_CHANNEL_STATE_CLOSED && reply.GetQuasiFree().GetState() != open {
 				return errNo
 			}
 			return nil
@@ -59,7 +66,50 @@ func reactionCommand(p program) *cobra.Command {
 	}
 	e.flags(c)
 	initial.add(c)
+	extra.add(c)
 	return c
+}
+
+// reactionFlags say what is wanted beside the limits.
+type reactionFlags struct {
+	transfers      []string
+	volume         bool
+	nucleus, fermi string
+}
+
+// add adds the flags.
+func (x *reactionFlags) add(c *cobra.Command) {
+	f := c.Flags()
+	f.StringArrayVar(&x.transfers, "t", nil,
+		`squared momentum transfer wanted, such as "beam, pi+ pi-" or "target, X"; all of single products if not given; may be given several times`)
+	f.BoolVar(&x.volume, "volume", false, "also give the volume of phase space")
+	f.StringVar(&x.nucleus, "nucleus", "", "nucleus in which the target, p or n, is bound; adds the quasi-free and coherent thresholds")
+	f.StringVar(&x.fermi, "fermi", "", `largest momentum of the nucleon in --nucleus, such as "250 MeV"`)
+}
+
+// read adds what the flags say to the request.
+func (x *reactionFlags) read(request *kinegatev1.DescribeReactionRequest) error {
+	request.WithPhaseSpaceVolume = x.volume
+	for _, text := range x.transfers {
+		initial, products, _ := strings.Cut(text, ",")
+		name := strings.ToUpper(strings.TrimSpace(initial))
+		value, ok := kinegatev1.InitialParticle_value["INITIAL_PARTICLE_"+name]
+		if !ok || value == 0 || strings.TrimSpace(products) == "" {
+			return badInput("--t %q: write \"beam\" or \"target\", a comma and products, such as \"beam, pi+ pi-\"", text)
+		}
+		request.MomentumTransfers = append(request.MomentumTransfers, &kinegatev1.MomentumTransferPair{
+			Initial: kinegatev1.InitialParticle(value), Products: strings.Fields(products),
+		})
+	}
+	if (x.nucleus == "") != (x.fermi == "") {
+		return badInput("--nucleus and --fermi need each other")
+	}
+	if x.nucleus == "" {
+		return nil
+	}
+	fermi, err := energy("--fermi", x.fermi)
+	request.BoundNucleon = &kinegatev1.BoundNucleon{Nucleus: x.nucleus, FermiMomentumGev: fermi}
+	return err
 }
 
 // digits are the significant digits of what is printed.
@@ -97,6 +147,9 @@ func (e *environment) describeReaction(r *kinegatev1.DescribeReactionResponse) e
 			t.Row("lightest X", strings.Join(x.GetLightest(), " ")+", "+gev(x.GetLightestMassGev()))
 		}
 	}
+	if v := r.GetPhaseSpaceVolume(); v != nil {
+		t.Row("phase space", fmt.Sprintf("%.*g%s", digits, v.GetVolume(), powerText(v.GetGevPower())))
+	}
 	for _, d := range r.GetDecays() {
 		t.Row("decay", fmt.Sprintf("%s: %s, releases %s", d.GetDecay(), decayClassText(d.GetDecayClass()), gev(d.GetReleasedEnergyGev())))
 	}
@@ -107,6 +160,9 @@ func (e *environment) describeReaction(r *kinegatev1.DescribeReactionResponse) e
 		return err
 	}
 	if err := e.productLimits(r); err != nil {
+		return err
+	}
+	if err := e.quasiFree(r.GetQuasiFree()); err != nil {
 		return err
 	}
 	e.print("\n  %s; particle table %s", r.GetFrame(), r.GetTableVersion())
@@ -142,6 +198,46 @@ func thresholdRows(t *text.Table, name string, x *kinegatev1.Threshold) {
 			t.Row("", "kinetic "+gev(x.GetKineticEnergyGev())+", momentum "+gev(x.GetMomentumGev()))
 		}
 	}
+}
+
+// powerText is the unit of a volume of phase space.
+func powerText(power int32) string {
+	if power == 0 {
+		return ""
+	}
+	return fmt.Sprintf(" GeV^%d", power)
+}
+
+// quasiFree prints the thresholds on a bound nucleon.
+func (e *environment) quasiFree(q *kinegatev1.QuasiFree) error {
+	if q == nil {
+		return nil
+	}
+	e.print("\n  on a nucleon of %s, momentum up to %s, with %s left over%s", q.GetNucleus(), gevs(q.GetFermiMomentumGev()), q.GetSpectator(),
+		stateText(q.GetState()))
+	t := text.NewTable("threshold", ">beam energy")
+	row := func(name string, x *kinegatev1.Threshold) {
+		value := "no energy of the beam reaches it"
+		switch {
+		case x.GetOpenAtRest():
+			value = "open with the beam at rest"
+		case x.TotalEnergyGev != nil:
+			value = gev(x.GetTotalEnergyGev())
+		}
+		t.Row(name, value)
+	}
+	row("lowest, nucleon at "+gevs(q.GetLowestNucleonMomentumGev())+" against the beam", q.GetLowest())
+	row("nucleon at rest in the nucleus", q.GetAtRest())
+	row("highest, every nucleon takes part", q.GetHighest())
+	row("absolute, the whole nucleus takes part", q.GetAbsolute())
+	if q.GetCoherent() != nil {
+		row("coherent, "+q.GetCoherentReaction(), q.GetCoherent())
+	}
+	if err := t.Write(e.out); err != nil {
+		return err
+	}
+	e.print("  %s", q.GetModel())
+	return nil
 }
 
 func plusMinus(x float64) string {

@@ -1,6 +1,6 @@
 // Package quantity reads and writes numbers with units, such as "1.3 GeV",
 // "351.1 nm" or "25 deg". Inside the program a quantity is a plain number in the
-// base unit of its dimension: GeV, radian, metre, second, hertz.
+// base unit of its dimension: GeV, radian, metre, second, hertz and so on.
 package quantity
 
 import (
@@ -16,16 +16,22 @@ type Dimension int
 
 // The dimensions with their base units.
 const (
-	Energy    Dimension = iota // GeV; mass and momentum with c = 1 too
-	Angle                      // radian
-	Length                     // metre
-	Time                       // second
-	Frequency                  // hertz
+	Energy       Dimension = iota // GeV; mass and momentum with c = 1 too
+	Angle                         // radian
+	Length                        // metre
+	Time                          // second
+	Frequency                     // hertz
+	CrossSection                  // barn
+	Temperature                   // kelvin
+	Density                       // particles per cubic metre
+	Square                        // GeV squared; squared masses and momentum transfers
+	Rigidity                      // gigavolt; momentum over charge
 )
 
 // String names the dimension.
 func (d Dimension) String() string {
-	return [...]string{"energy", "angle", "length", "time", "frequency"}[d]
+	return [...]string{"energy", "angle", "length", "time", "frequency", "cross-section", "temperature", "density",
+		"energy squared", "rigidity"}[d]
 }
 
 // unit is a power of ten of a base unit, or a factor on top of it.
@@ -36,20 +42,31 @@ type unit struct {
 	factor    float64 // 0 means 1
 }
 
-// units of every dimension, small to large.
+// units of every dimension, small to large; those with a factor are read and not written.
 var units = []unit{
 	{"eV", Energy, -9, 0}, {"keV", Energy, -6, 0}, {"MeV", Energy, -3, 0}, {"GeV", Energy, 0, 0},
 	{"TeV", Energy, 3, 0}, {"PeV", Energy, 6, 0}, {"EeV", Energy, 9, 0},
 	{"urad", Angle, -6, 0}, {"mrad", Angle, -3, 0}, {"rad", Angle, 0, 0}, {"deg", Angle, 0, math.Pi / 180},
 	{"fm", Length, -15, 0}, {"pm", Length, -12, 0}, {"nm", Length, -9, 0}, {"um", Length, -6, 0},
 	{"mm", Length, -3, 0}, {"cm", Length, -2, 0}, {"m", Length, 0, 0}, {"km", Length, 3, 0},
+	{"pc", Length, 0, MetrePerParsec}, {"kpc", Length, 3, MetrePerParsec}, {"Mpc", Length, 6, MetrePerParsec},
 	{"as", Time, -18, 0}, {"fs", Time, -15, 0}, {"ps", Time, -12, 0}, {"ns", Time, -9, 0},
 	{"us", Time, -6, 0}, {"ms", Time, -3, 0}, {"s", Time, 0, 0},
 	{"Hz", Frequency, 0, 0}, {"kHz", Frequency, 3, 0}, {"MHz", Frequency, 6, 0}, {"GHz", Frequency, 9, 0},
 	{"THz", Frequency, 12, 0}, {"PHz", Frequency, 15, 0},
+	{"fb", CrossSection, -15, 0}, {"pb", CrossSection, -12, 0}, {"nb", CrossSection, -9, 0},
+	{"ub", CrossSection, -6, 0}, {"mb", CrossSection, -3, 0}, {"b", CrossSection, 0, 0},
+	{"K", Temperature, 0, 0}, {"/m3", Density, 0, 0}, {"/cm3", Density, 6, 0},
+	{"eV^2", Square, -18, 0}, {"keV^2", Square, -12, 0}, {"MeV^2", Square, -6, 0}, {"GeV^2", Square, 0, 0},
+	{"TeV^2", Square, 6, 0},
+	{"V", Rigidity, -9, 0}, {"kV", Rigidity, -6, 0}, {"MV", Rigidity, -3, 0}, {"GV", Rigidity, 0, 0}, {"TV", Rigidity, 3, 0},
 }
 
-var form = regexp.MustCompile(`^([-+]?(?:[0-9]+\.?[0-9]*|\.[0-9]+))(?:[eE]([-+]?[0-9]{1,4}))?\s*([A-Za-z]+)$`)
+// MetrePerParsec is the length of a parsec: 648000/pi astronomical units of 149597870700 m (resolutions B2 of
+// 2012 and B2 of 2015 of the International Astronomical Union).
+const MetrePerParsec = 648000 / math.Pi * 149597870700
+
+var form = regexp.MustCompile(`^([-+]?(?:[0-9]+\.?[0-9]*|\.[0-9]+))(?:[eE]([-+]?[0-9]{1,4}))?\s*([A-Za-z]+(?:\^2)?|/c?m3)$`)
 
 // Parse reads a quantity of the dimension. The decimal that is meant is rounded
 // once: "850 MeV" is the double nearest to 0.850 GeV.
@@ -89,7 +106,7 @@ func ParsePhotonEnergy(text string) (float64, error) {
 		return hcGeVm / value, nil
 	case Frequency:
 		return hGeVs * value, nil
-	case Angle, Time:
+	case Angle, Time, CrossSection, Temperature, Density, Square, Rigidity:
 	}
 	return 0, fmt.Errorf("%q is a quantity of %s; a photon energy, wavelength or frequency is needed here",
 		text, found.dimension)
@@ -139,5 +156,6 @@ func names(dimension Dimension) string {
 }
 
 func example(dimension Dimension) string {
-	return [...]string{`"1.3 GeV"`, `"25 deg"`, `"20 cm"`, `"1.5 ns"`, `"400 Hz"`}[dimension]
+	return [...]string{`"1.3 GeV"`, `"25 deg"`, `"20 cm"`, `"1.5 ns"`, `"400 Hz"`, `"0.5 mb"`, `"2.7255 K"`, `"411 /cm3"`,
+		`"-0.3 GeV^2"`, `"2 GV"`}[dimension]
 }

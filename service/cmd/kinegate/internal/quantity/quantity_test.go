@@ -27,6 +27,14 @@ func TestParse(t *testing.T) {
 		{"20 cm", quantity.Length, 0.20},
 		{"1.5 ns", quantity.Time, 1.5e-9},
 		{"400 Hz", quantity.Frequency, 400},
+		{"-0.3 GeV^2", quantity.Square, -0.3},
+		{"600 MeV^2", quantity.Square, 600e-6},
+		{"2 GV", quantity.Rigidity, 2},
+		{"150MV", quantity.Rigidity, 0.150},
+		{"2 kpc", quantity.Length, 6.1713551629827345e19},
+		{"17 mb", quantity.CrossSection, 0.017},
+		{"2.7255 K", quantity.Temperature, 2.7255},
+		{"411 /cm3", quantity.Density, 411e6},
 	} {
 		if got, err := quantity.Parse(c.text, c.dimension); err != nil || got != c.want {
 			t.Errorf("%q is %v, %v; want %v", c.text, got, err, c.want)
@@ -44,6 +52,8 @@ func TestParseRefuses(t *testing.T) {
 		{"1.3", quantity.Energy, "not a number with a unit"},
 		{"GeV", quantity.Energy, "not a number with a unit"},
 		{"1.3 gev", quantity.Energy, "unknown unit"},
+		{"1.3 GeV^2", quantity.Energy, "quantity of energy squared; energy is needed"},
+		{"1.3 m^2", quantity.Length, "unknown unit"},
 		{"25 deg", quantity.Energy, "quantity of angle; energy is needed"},
 		{"1.3 GeV", quantity.Angle, "quantity of energy; angle is needed"},
 		{"1e999 GeV", quantity.Energy, "out of range"},
@@ -94,6 +104,8 @@ func TestFormat(t *testing.T) {
 		{0.078, quantity.Length, 3, "78.0 mm"},
 		{2.617e-10, quantity.Time, 4, "261.7 ps"},
 		{400, quantity.Frequency, 3, "400 Hz"},
+		{-2.5, quantity.Square, 4, "-2.500 GeV^2"},
+		{2.5, quantity.Rigidity, 3, "2.50 GV"},
 	} {
 		if got := quantity.Format(c.x, c.dimension, c.digits); got != c.want {
 			t.Errorf("%v is written %q, want %q", c.x, got, c.want)
