@@ -37,7 +37,7 @@ func TestMain(m *testing.M) {
 }
 
 // process prepares the program as a process of its own.
-func process(t *testing.T, arguments ...string) *exec.Cmd {
+func process(t testing.TB, arguments ...string) *exec.Cmd {
 	t.Helper()
 	self, err := os.Executable()
 	if err != nil {
@@ -49,7 +49,7 @@ func process(t *testing.T, arguments ...string) *exec.Cmd {
 }
 
 // exitCode is the code a process ended with.
-func exitCode(t *testing.T, err error) int {
+func exitCode(t testing.TB, err error) int {
 	t.Helper()
 	if err == nil {
 		return 0
@@ -158,7 +158,7 @@ func TestHelpHoldsTheCaution(t *testing.T) {
 }
 
 // addresses reads from the log where a server listens.
-func addresses(t *testing.T, log io.Reader) map[string]string {
+func addresses(t testing.TB, log io.Reader) map[string]string {
 	t.Helper()
 	found := map[string]string{}
 	lines := bufio.NewScanner(log)
