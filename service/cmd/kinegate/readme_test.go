@@ -2,14 +2,19 @@ package main
 
 import (
 	"bytes"
+	"flag"
 	"os"
+	"slices"
 	"strings"
 	"testing"
 )
 
+var update = flag.Bool("update", false, "write what the commands print into the pages")
+
 // TestReadmeIsTrue runs every "$ kinegate ..." of the README's console blocks in the
 // top folder and compares what is printed with what follows it. A line "..." stands
-// for any lines, for what differs from run to run.
+// for any lines, for what differs from run to run. With -update, examples without
+// such a line are written anew.
 func TestReadmeIsTrue(t *testing.T) {
 	t.Chdir("../../..")
 	for _, page := range []string{"README.md", "DEVELOPERS.md"} {
@@ -17,6 +22,7 @@ func TestReadmeIsTrue(t *testing.T) {
 		if err != nil {
 			t.Fatal(err)
 		}
+		before := bytes.Clone(text)
 		examples := consoleExamples(string(text))
 		if page == "README.md" && len(examples) < 5 {
 			t.Errorf("%s has %d examples; the reader of blocks may be broken", page, len(examples))
@@ -26,10 +32,20 @@ func TestReadmeIsTrue(t *testing.T) {
 				arguments := shellWords(e.command)
 				var out bytes.Buffer
 				run(t.Context(), program{in: strings.NewReader(""), out: &out, err: &out}, arguments[1:])
-				if !matches(strings.Split(strings.TrimRight(out.String(), "\n"), "\n"), e.output) {
+				got := strings.Split(strings.TrimRight(out.String(), "\n"), "\n")
+				if *update && !slices.Contains(e.output, "...") {
+					text = bytes.Replace(text, []byte(e.text(e.output)), []byte(e.text(got)), 1)
+					return
+				}
+				if !matches(got, e.output) {
 					t.Errorf("prints\n%s\nbut the page says\n%s", out.String(), strings.Join(e.output, "\n"))
 				}
 			})
+		}
+		if !bytes.Equal(before, text) {
+			if err := os.WriteFile(page, text, 0o644); err != nil { //nolint:gosec // a page for all to read
+				t.Fatal(err)
+			}
 		}
 	}
 }
@@ -38,6 +54,11 @@ func TestReadmeIsTrue(t *testing.T) {
 type example struct {
 	command string
 	output  []string
+}
+
+// text is the example with an output as it stands in the page.
+func (e example) text(output []string) string {
+	return "$ " + e.command + "\n" + strings.Join(output, "\n") + "\n"
 }
 
 // consoleExamples reads the blocks fenced as console.
