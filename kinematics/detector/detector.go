@@ -30,7 +30,8 @@ type Labels struct {
 
 // Measure replaces the content of block by the measurement of the events of
 // truth, in the momentum and angles set, and that of labels, unless it is nil.
-// Their memory is kept between calls.
+// Their memory is kept between calls, and apart from it each call allocates a
+// fixed amount. The block is valid for at most event.MaxEvents events.
 func (d *Detector) Measure(truth *event.Truth, block *event.Block, labels *Labels) {
 	w := worker{config: &d.config}
 	d.reset(block)

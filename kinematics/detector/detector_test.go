@@ -21,7 +21,7 @@ const degree = math.Pi / 180
 func hall() detector.Config {
 	edges := make([]float64, 241)
 	for i := range edges {
-		edges[i] = 1.2 + 0.005*float64(i)
+		edges[i] = 1.2 + float64(0.005*float64(i))
 	}
 	return detector.Config{
 		Seed: 9,
@@ -71,7 +71,7 @@ func truthOf(n int, each func(i int) []particle) *event.Truth {
 		}
 		truth.Vertex.Append(0, 0, 0)
 		truth.Offsets = append(truth.Offsets, int32(len(truth.Number)))
-		truth.BeamEnergyGeV = append(truth.BeamEnergyGeV, 1.2+1.2*(float64(i)+0.5)/float64(n))
+		truth.BeamEnergyGeV = append(truth.BeamEnergyGeV, 1.2+float64(1.2*(float64(i)+0.5)/float64(n)))
 		truth.BeamTimeNS = append(truth.BeamTimeNS, 0)
 		truth.BeamOffsets = append(truth.BeamOffsets, int32(i+1))
 	}
@@ -483,6 +483,24 @@ func TestGoldenMeasured(t *testing.T) {
 		d.Float(block.Beam.EnergyGeV...)
 		d.Float(block.Beam.TimeNS...)
 	})
+}
+
+func TestNoAllocationPerEvent(t *testing.T) {
+	d, err := detector.New(hall())
+	if err != nil {
+		t.Fatal(err)
+	}
+	block := &event.Block{}
+	one, many := events(1), events(1000)
+	d.Measure(many, block, nil)
+	allocations := func(truth *event.Truth) float64 {
+		return testing.AllocsPerRun(5, func() { d.Measure(truth, block, nil) })
+	}
+	// The working memory of a call grows to that of its largest event, in a few
+	// doublings.
+	if few, some := allocations(one), allocations(many); some > few+8 {
+		t.Errorf("%v allocations for an event, %v for a thousand", few, some)
+	}
 }
 
 func BenchmarkMeasure(b *testing.B) {

@@ -30,7 +30,8 @@ type Channel struct {
 	// Name labels the channel in faults and summaries.
 	Name string
 	// Fraction is the share of the events that are of this channel, relative to
-	// the other channels' fractions; of a single channel it does not count.
+	// the other channels' fractions; of a single channel it does not count. It
+	// counts events of the stated final state: branching fractions do not enter.
 	Fraction float64
 	// Products of the reaction, 2 to MaxBodies.
 	Products []Product

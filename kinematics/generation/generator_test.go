@@ -208,6 +208,22 @@ func TestClosedAndEmpty(t *testing.T) {
 	}
 }
 
+// Filling kept memory allocates the same for few events as for many.
+func TestNoAllocationPerEvent(t *testing.T) {
+	g := generator(t, hall())
+	truth, _ := fill(t, g, 0, 2000)
+	allocations := func(n int) float64 {
+		return testing.AllocsPerRun(5, func() {
+			if _, err := g.Fill(0, n, truth); err != nil {
+				t.Error(err)
+			}
+		})
+	}
+	if few, many := allocations(1), allocations(1000); few != many {
+		t.Errorf("%v allocations for an event, %v for a thousand", few, many)
+	}
+}
+
 func BenchmarkMixture(b *testing.B) {
 	g := generator(b, hall())
 	truth := &event.Truth{}

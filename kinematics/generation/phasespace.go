@@ -35,10 +35,11 @@ type PhaseSpace struct {
 	n int
 	// mass of particle k, and sum of the masses 0 to k.
 	mass, sum [MaxBodies]float64
-	// rest is the mass of particles 0 to k together, split is the momentum of
-	// particle k against particles 0 to k-1 in their common rest frame.
-	rest, split [MaxBodies]float64
-	constant    float64
+	// rest is the mass of particles 0 to k together and inverse its inverse;
+	// split and energy are the momentum and the energy of particle k against
+	// particles 0 to k-1 in their common rest frame.
+	rest, inverse, split, energy [MaxBodies]float64
+	constant                     float64
 }
 
 // NewPhaseSpace returns the phase space of particles with the given masses in
@@ -109,35 +110,40 @@ func (ps *PhaseSpace) masses(u []float64, m float64) float64 {
 	n := ps.n
 	t := m - ps.sum[n-1]
 	var r [MaxBodies]float64
-	copy(r[1:], u)
-	for k := 2; k < n-1; k++ { // sorted by insertion
-		u := r[k]
-		i := k
-		for i > 1 && r[i-1] > u {
+	for k, v := range u { // sorted by insertion
+		i := k + 1
+		for i > 1 && r[i-1] > v {
 			r[i] = r[i-1]
 			i--
 		}
-		r[i] = u
+		r[i] = v
 	}
 	if !(t > 0) {
 		return 0
 	}
 	r[n-1] = 1
-	ps.rest[n-1] = m
-	w := ps.constant / m
+	w := ps.constant
+	below := ps.mass[0]
 	for k := 1; k < n; k++ {
 		// The excess of each split is its own quantity, never a difference of
 		// masses that both hold the sums.
-		excess := float64((r[k] - r[k-1]) * t)
+		q := float64((r[k] - r[k-1]) * t)
+		whole, mass := m, ps.mass[k]
 		if k < n-1 {
-			ps.rest[k] = ps.sum[k] + float64(r[k]*t)
+			whole = ps.sum[k] + float64(r[k]*t)
 			w *= t
 		}
-		p := splitMomentum(excess, ps.rest[k], ps.rest[k-1], ps.mass[k])
-		ps.split[k] = p
+		// splitMomentum, and m_k + q (q + 2 M_(k-1))/(2 M_k), with one division,
+		// which the boosts use again: divisions and roots are what this costs.
+		inverse := 1 / whole
+		half := 0.5 * inverse
+		p := math.Sqrt(q*(q+(mass+mass))*(q+(below+below))*(whole+below+mass)) * half
+		ps.rest[k], ps.inverse[k], ps.split[k] = whole, inverse, p
+		ps.energy[k] = mass + float64(q*(q+(below+below))*half)
+		below = whole
 		w *= p
 	}
-	return w
+	return w * ps.inverse[n-1]
 }
 
 // splitMomentum is the momentum of the two parts a, b of a system of mass m
@@ -184,32 +190,31 @@ func (ps *PhaseSpace) drawPlaces(s *random.Stream, total momentum.Four, m float6
 // direction of the last particle in the total's rest frame.
 func (ps *PhaseSpace) place(u []float64, total momentum.Four, m float64, out []momentum.Four, first *momentum.Three) {
 	last := ps.n - 1
+	var directed [MaxBodies]momentum.Three
+	direct(u, &ps.split, &directed)
+	if first != nil {
+		directed[last] = first.Scale(ps.split[last])
+	}
 	px, py, pz, e := total.P.X, total.P.Y, total.P.Z, total.E
 	for k := last; k > 0; k-- {
-		p, mass := ps.split[k], ps.mass[k]
-		var q momentum.Three
-		if k == last && first != nil {
-			q = first.Scale(p)
-		} else {
-			q = isotropic(u[2*k-2], u[2*k-1], p)
-		}
+		q, mass, es, inverse := &directed[k], ps.mass[k], ps.energy[k], ps.inverse[k]
 		// Boost of q with the energy es along the total's own motion:
-		// q + P ((P.q)/(E + M) + es)/M, as one fraction.
-		es := math.Sqrt(float64(p*p) + float64(mass*mass))
+		// q + P ((P.q)/(E + M) + es)/M, and its energy (E es + P.q)/M.
 		along := float64(px*q.X) + float64(py*q.Y) + float64(pz*q.Z)
-		f := (along + float64(es*(e+m))) / ((e + m) * m)
+		f := (along/(e+m) + es) * inverse
 		x, y, z := q.X+float64(px*f), q.Y+float64(py*f), q.Z+float64(pz*f)
 		out[k] = momentum.Four{
 			P: momentum.Three{X: x, Y: y, Z: z},
 			E: shell(x, y, z, mass),
 		}
-		// The rest takes what is left, so that momentum is conserved to the
-		// last bit of the larger term.
+		// The rest takes what is left, so that momentum is conserved to the last
+		// bit of the larger term. Its energy serves the next boost alone, which
+		// forgives the rounding of this difference: it is that of the total.
 		px, py, pz = px-x, py-y, pz-z
+		e -= float64((float64(e*es) + along) * inverse)
 		m = ps.rest[k-1]
-		e = shell(px, py, pz, m)
 	}
-	out[0] = momentum.Four{P: momentum.Three{X: px, Y: py, Z: pz}, E: e}
+	out[0] = momentum.Four{P: momentum.Three{X: px, Y: py, Z: pz}, E: shell(px, py, pz, ps.mass[0])}
 }
 
 // shell is the energy of a momentum on the shell of mass m.
@@ -217,10 +222,25 @@ func shell(x, y, z, m float64) float64 {
 	return math.Sqrt(float64(x*x) + float64(y*y) + (float64(z*z) + float64(m*m)))
 }
 
+// direct gives the momenta of the splits a random direction each. It is apart
+// from place so that fewer values have to be saved around the sines.
+func direct(u []float64, split *[MaxBodies]float64, directed *[MaxBodies]momentum.Three) {
+	for k := 1; k < MaxBodies && 2*k <= len(u); k++ {
+		sin, cos := num.SincosTurn(u[2*k-1])
+		directed[k] = onSphere(u[2*k-2], sin, cos, split[k])
+	}
+}
+
 // isotropic is the vector of length p in the direction that two uniform numbers
-// give: cos theta = 2u - 1, sin theta = 2 sqrt(u (1 - u)), phi = 2 pi v.
+// give.
 func isotropic(u, v, p float64) momentum.Three {
 	sin, cos := num.SincosTurn(v)
+	return onSphere(u, sin, cos, p)
+}
+
+// onSphere is the vector of length p with cos theta = 2u - 1, sin theta =
+// 2 sqrt(u (1 - u)) and the sine and cosine of its azimuth.
+func onSphere(u, sin, cos, p float64) momentum.Three {
 	transverse := 2 * p * math.Sqrt(u*(1-u))
 	return momentum.Three{X: transverse * cos, Y: transverse * sin, Z: p * (u - (1 - u))}
 }
