@@ -127,6 +127,10 @@ func (j *judging) catchUp() {
 
 // convertBlock reads a block within the limits into the memory of w.
 func convertBlock(m *kinegatev1.EventBlock, bytes int64, limits blockLimits, w *workspace) (*event.Block, error) {
+	// The size comes first, so that a block over it costs nothing.
+	if bytes > limits.bytes {
+		return nil, limits.over("the size of the block in bytes", bytes, limits.bytes)
+	}
 	block, err := eventBlock(m, &w.columns)
 	if err != nil {
 		return nil, Because(BlockInvalid, err)

@@ -104,10 +104,15 @@ func (b blockLimits) check(bytes int64, block *event.Block) error {
 		{"the number of beam candidates of the block", size.candidates, b.candidates},
 	} {
 		if x.actual > x.limit {
-			return OverLimit(BlockInvalid, x.what, x.actual, x.limit, "send smaller blocks")
+			return b.over(x.what, x.actual, x.limit)
 		}
 	}
 	return nil
+}
+
+// over is the refusal of a block that is beyond a limit.
+func (blockLimits) over(what string, actual, limit int64) error {
+	return OverLimit(BlockInvalid, what, actual, limit, "send smaller blocks")
 }
 
 // form is the limits in the core's form.
