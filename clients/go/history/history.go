@@ -17,6 +17,7 @@ import (
 // safe for concurrent use.
 type Checker struct {
 	mu        sync.Mutex
+	first     int64
 	next      int64 // sequence of the next answer
 	sent      map[int64][]int64
 	reference map[int64]string
@@ -36,7 +37,7 @@ const maxFaults = 20
 
 // New returns a checker whose first block has the given sequence.
 func New(first int64) *Checker {
-	return &Checker{next: first, sent: map[int64][]int64{}, reference: map[int64]string{}}
+	return &Checker{first: first, next: first, sent: map[int64][]int64{}, reference: map[int64]string{}}
 }
 
 // Learn takes a block and its verdict from a run that was not interrupted. Event ids
@@ -59,6 +60,15 @@ func (c *Checker) Learn(block *kinegatev1.EventBlock, verdict *kinegatev1.Verdic
 		c.reference[id] = records[i]
 	}
 	return nil
+}
+
+// Again starts over with the first sequence, for one more run of what was learned; the
+// counts go on.
+func (c *Checker) Again() {
+	c.mu.Lock()
+	defer c.mu.Unlock()
+	c.next = c.first
+	clear(c.sent)
 }
 
 // Sent notes a block that was sent, or sent again: one sequence must always stand for
