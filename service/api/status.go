@@ -38,6 +38,11 @@ func (f *Failure) Status(reference string) *status.Status {
 	if f.RetryAfter > 0 {
 		details = append(details, &errdetails.RetryInfo{RetryDelay: durationpb.New(f.RetryAfter)})
 	}
+	if meaning.Reason == QuotaExceeded {
+		details = append(details, &errdetails.QuotaFailure{Violations: []*errdetails.QuotaFailure_Violation{{
+			Subject: "caller:" + info.GetMetadata()["caller"], Description: message,
+		}}})
+	}
 	if len(f.Violations) > 0 && meaning.Reason != InternalFault {
 		details = append(details, badRequest(f.Violations))
 	}

@@ -146,7 +146,7 @@ func startHooked(t *testing.T, h *hooked, change ...func(*Options, *Deps)) (*run
 	t.Helper()
 	r := prepare(t, change...)
 	old := r.fronts[General]
-	f := newFront(old.desk, int(old.most), r.serverOptions(r.options.GeneralStreamWindow, r.options.GeneralConnectionWindow))
+	f := newFront(old.desk, old.rules, r.serverOptions(r.options.GeneralStreamWindow, r.options.GeneralConnectionWindow))
 	kinegatev1.RegisterInfoServiceServer(f, h)
 	kinegatev1.RegisterSelectionServiceServer(f, h)
 	r.fronts[General] = f
@@ -239,7 +239,7 @@ func TestOverloadIsRefusedBeforeWork(t *testing.T) {
 		<-leave
 		return &kinegatev1.GetInfoResponse{}, nil
 	}}
-	r, client, conn := startHooked(t, h, func(o *Options, _ *Deps) { o.GeneralStreams, o.ConnectionStreams = 2, 2 })
+	r, client, conn := startHooked(t, h, func(o *Options, _ *Deps) { o.GeneralStreams, o.ConnectionStreams, o.CallerCalls = 2, 2, 2 })
 	done := make(chan error, 2)
 	for range 2 {
 		go func() {
@@ -305,23 +305,6 @@ func TestRequestIDs(t *testing.T) {
 	eventually(t, "the id in the log", func() bool { return strings.Contains(r.log.String(), "run-7.event_12") })
 	if strings.Contains(r.log.String(), "two words") {
 		t.Error("an id that is not plain is in the log")
-	}
-}
-
-func TestAuthorise(t *testing.T) {
-	r := start(t, func(_ *Options, d *Deps) {
-		d.Authorise = func(identity, method string) error {
-			if identity == "" && strings.HasSuffix(method, "/GetInfo") {
-				return api.Refuse(api.CallerUnknown, "the method needs a certificate")
-			}
-			return nil
-		}
-	})
-	conn := r.general(t)
-	_, err := kinegatev1.NewInfoServiceClient(conn).GetInfo(t.Context(), &kinegatev1.GetInfoRequest{})
-	wantReason(t, err, api.CallerUnknown)
-	if _, err := kinegatev1.NewParticleServiceClient(conn).ListParticles(t.Context(), &kinegatev1.ListParticlesRequest{}); err != nil {
-		t.Error(err)
 	}
 }
 

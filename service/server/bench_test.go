@@ -57,7 +57,7 @@ func BenchmarkDescribeReaction(b *testing.B) {
 	go func() { _ = bare.Serve(l) }()
 	defer bare.Stop()
 	theirs := dial(l.Addr().String())
-	f := newFront(r.fronts[General].desk, 100, r.serverOptions(r.options.GeneralStreamWindow, r.options.GeneralConnectionWindow))
+	f := newFront(r.fronts[General].desk, r.fronts[General].rules, r.serverOptions(r.options.GeneralStreamWindow, r.options.GeneralConnectionWindow))
 	kinegatev1.RegisterReactionServiceServer(f, &echo{reply: reply})
 	fl, err := net.Listen("tcp", "127.0.0.1:0")
 	if err != nil {

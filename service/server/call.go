@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"sync"
 	"sync/atomic"
 	"time"
 
@@ -28,10 +29,17 @@ type call struct {
 	label  string
 	begun  time.Time
 	limits api.Limits
+	use    *inUse // what was in use when it began
 
-	reference string // ours, unique: what a caller quotes to us
-	requestID string // the caller's if it is short and plain, else the reference
-	identity  string
+	reference string   // ours, unique: what a caller quotes to us
+	requestID string   // the caller's if it is short and plain, else the reference
+	names     []string // URIs and DNS names of the caller's certificate
+	caller    string   // whose quota it counts against
+	trace     trace
+	cutFor    atomic.Pointer[api.Failure] // why it was ended from outside; nil if it was not
+	headed    sync.Once
+	told      time.Time   // when the last summary was written; guarded by openStreams.mu
+	waiting   *time.Timer // ends a stream whose first message does not come; nil for none
 
 	// Readers and writers of a stream are different goroutines.
 	received, sent           atomic.Int64
@@ -74,12 +82,27 @@ func (c *call) receive(in *incoming) error {
 		}
 		return receiveFailure(err)
 	}
+	if c.waiting != nil {
+		c.waiting.Stop()
+	}
 	if in.fault != nil {
 		return in.fault
 	}
 	c.received.Add(1)
 	c.receivedBytes.Add(int64(in.size))
 	return nil
+}
+
+// SendHeader sends the headers now.
+func (c *call) SendHeader(header metadata.MD) error {
+	c.head()
+	return c.ServerStream.SendHeader(header) //nolint:wrapcheck // as a ServerStream does
+}
+
+// head adds the trace to the headers of a call that is going to be answered. Before
+// that a failure must stay without headers: a client that has some does not try again.
+func (c *call) head() {
+	c.headed.Do(func() { _ = c.SetHeader(metadata.Pairs(traceKey, c.trace.header())) }) // too late if it fails
 }
 
 // SendMsg sends a message.
@@ -89,6 +112,7 @@ func (c *call) SendMsg(m any) error {
 		return err
 	}
 	size := int64(out.data.Len())
+	c.head()
 	if err := c.ServerStream.SendMsg(out); err != nil {
 		// Encoding is behind us: the caller or the connection has gone.
 		return &api.Failure{Reason: api.CallCancelled, Message: "the caller has gone", Cause: err}

@@ -24,13 +24,13 @@ const rereadPeriod = 10 * time.Second
 type certificates struct {
 	options *Options
 	metrics *telemetry.Metrics
-	log     zerolog.Logger
+	log     func() *zerolog.Logger
 	sum     [sha256.Size]byte
 	current atomic.Pointer[tls.Config]
 }
 
 // loadCertificates reads the files for the first time.
-func loadCertificates(o *Options, metrics *telemetry.Metrics, log zerolog.Logger) (*certificates, error) {
+func loadCertificates(o *Options, metrics *telemetry.Metrics, log func() *zerolog.Logger) (*certificates, error) {
 	c := &certificates{options: o, metrics: metrics, log: log}
 	if _, err := c.reread(); err != nil {
 		return nil, err
@@ -62,9 +62,9 @@ func (c *certificates) watch(ctx context.Context) {
 			changed, err := c.reread()
 			switch {
 			case err != nil:
-				c.log.Error().Err(err).Msg("certificate files are bad, the old set stays in use")
+				c.log().Error().Err(err).Msg("certificate files are bad, the old set stays in use")
 			case changed:
-				c.log.Info().Msg("certificate files have changed, the new set is in use")
+				c.log().Info().Msg("certificate files have changed, the new set is in use")
 			}
 		}
 	}

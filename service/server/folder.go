@@ -32,7 +32,7 @@ type folder struct {
 	path    string
 	library *api.Library
 	metrics *telemetry.Metrics
-	log     zerolog.Logger
+	log     func() *zerolog.Logger
 
 	mu sync.Mutex // guards the rest
 	// sums are the contents of the files when last read, owners the file or setting
@@ -44,7 +44,7 @@ type folder struct {
 
 // loadFolder reads the folder for the first time; taken are the names that selection
 // files have already. Every file must be sound.
-func loadFolder(path string, library *api.Library, taken []string, metrics *telemetry.Metrics, log zerolog.Logger) (*folder, error) {
+func loadFolder(path string, library *api.Library, taken []string, metrics *telemetry.Metrics, log func() *zerolog.Logger) (*folder, error) {
 	f := &folder{
 		path: path, library: library, metrics: metrics, log: log,
 		sums: map[string][sha256.Size]byte{}, owners: map[string]string{}, bad: map[string]bool{},
@@ -74,10 +74,10 @@ func (f *folder) watch(ctx context.Context) {
 func (f *folder) refresh() {
 	changed, err := f.reread()
 	if err != nil {
-		f.log.Error().Err(err).Msg("a file of selections is bad, its old version stays in use")
+		f.log().Error().Err(err).Msg("a file of selections is bad, its old version stays in use")
 	}
 	for _, v := range changed {
-		f.log.Info().Str("selection", v.Name()).Str("selection_digest", v.Digest()).Msg("a selection has changed, the new version is in use")
+		f.log().Info().Str("selection", v.Name()).Str("selection_digest", v.Digest()).Msg("a selection has changed, the new version is in use")
 	}
 }
 

@@ -5,6 +5,7 @@ import (
 	"crypto/rand"
 	"encoding/hex"
 	"errors"
+	"net"
 	"strconv"
 	"strings"
 	"sync/atomic"
@@ -26,13 +27,12 @@ const pushback = 200 * time.Millisecond
 
 // desk is what the fronts of one server share.
 type desk struct {
-	limits          api.Limits
-	metrics         *telemetry.Metrics
-	callLog         *telemetry.CallLog
-	authorise       func(identity, method string) error
-	defaultDeadline time.Duration
-	longestDeadline time.Duration
-	leaving         <-chan struct{}
+	limits     api.Limits
+	streamIdle time.Duration
+	metrics    *telemetry.Metrics
+	current    *atomic.Pointer[inUse]
+	streams    *openStreams
+	leaving    <-chan struct{}
 
 	nonce string
 	calls atomic.Uint64
@@ -57,8 +57,21 @@ type front struct {
 	*desk
 
 	server *grpc.Server
-	most   int64
+	rules  rules
 	open   atomic.Int64
+	work   *workQueue
+	quota  quota
+}
+
+// rules are what a listener holds callers to.
+type rules struct {
+	// most is how many calls may be open.
+	most func(*Options) int
+	// private listeners ask callers who they are and may have an access file.
+	private bool
+	// shared listeners have callers of all kinds, whom quotas and costs keep apart. The
+	// gate is not one: its streams have credit, and nothing else may delay them.
+	shared bool
 }
 
 // RegisterService adds a service. Every method becomes a stream of any number of
@@ -82,6 +95,12 @@ func (f *front) RegisterService(desc *grpc.ServiceDesc, impl any) {
 	}
 	for _, s := range desc.Streams {
 		add(s.StreamName, !s.ClientStreams, func(srv any, c *call) error {
+			f.streams.add(c, f)
+			defer f.streams.remove(c)
+			c.waiting = time.AfterFunc(f.streamIdle, func() {
+				c.cut(api.Refuse(api.StreamIdle, "no message came for "+f.streamIdle.String()))
+			})
+			defer c.waiting.Stop()
 			f.writeOpened(c)
 			return s.Handler(srv, c)
 		})
@@ -92,10 +111,8 @@ func (f *front) RegisterService(desc *grpc.ServiceDesc, impl any) {
 // answer is around every call. Its lines are the layers, outermost first.
 func (f *front) answer(c *call, body func() error) error {
 	err := api.Contain(func() error {
-		if f.authorise != nil {
-			if err := f.authorise(c.identity, c.method); err != nil {
-				return err
-			}
+		if err := f.authorise(c, c.use); err != nil {
+			return err
 		}
 		if err := f.admit(c); err != nil {
 			return err
@@ -103,27 +120,69 @@ func (f *front) answer(c *call, body func() error) error {
 		defer f.release(c)
 		return body()
 	})
+	if why := c.cutFor.Load(); err != nil && why != nil {
+		err = why
+	}
 	return f.end(c, err)
+}
+
+// authorise returns nil if the caller may call the method.
+func (f *front) authorise(c *call, use *inUse) error {
+	if !f.rules.private || use.access == nil {
+		return nil
+	}
+	return use.access.check(c.names, c.method)
 }
 
 // unary is the body of a method with one message each way. A deadline is all that keeps
 // a handler from working for a caller who has long given up.
 func (f *front) unary(c *call, srv any, handler grpc.MethodHandler) error {
 	deadline, ok := c.ctx.Deadline()
-	limit := f.longestDeadline
+	limit := c.use.options.LongestDeadline
 	if !ok {
-		limit = f.defaultDeadline
+		limit = c.use.options.DefaultDeadline
 	}
 	if !ok || deadline.Sub(c.begun) > limit {
 		ctx, cancel := context.WithTimeout(c.ctx, limit)
 		defer cancel()
+		// The transport knows of the caller's own deadline only, and the message may
+		// never come.
+		defer context.AfterFunc(ctx, func() { c.cut(api.Explain(ctx.Err())) })()
 		c.ctx = ctx
 	}
-	reply, err := handler(srv, c.ctx, c.RecvMsg, nil)
+	cost := 0
+	receive := func(m any) error {
+		if err := c.RecvMsg(m); err != nil {
+			return err
+		}
+		price := f.price(c, m)
+		if price == 0 {
+			return nil
+		}
+		if err := f.work.enter(c.ctx, price, c.use.options.slots()); err != nil {
+			return f.refuse(err)
+		}
+		cost = price
+		return nil
+	}
+	defer func() {
+		if cost > 0 {
+			f.work.leave(cost)
+		}
+	}()
+	reply, err := handler(srv, c.ctx, receive, nil)
 	if err != nil {
 		return err
 	}
 	return c.SendMsg(reply)
+}
+
+// price is the cost of a call of a listener that asks one; health costs nothing.
+func (f *front) price(c *call, request any) int {
+	if !f.rules.shared || isHealth(c.label) {
+		return 0
+	}
+	return api.Cost(request)
 }
 
 // unknown answers calls of methods that are not registered.
@@ -152,8 +211,10 @@ func (f *front) begin(method, label string, stream grpc.ServerStream) *call {
 	ctx := stream.Context()
 	c := &call{
 		ServerStream: stream, ctx: ctx, method: method, label: label, begun: time.Now(),
-		limits: f.limits, reference: f.reference(), identity: identity(ctx),
+		limits: f.limits, reference: f.reference(), use: f.current.Load(),
+		names: names(ctx), trace: traceOf(ctx),
 	}
+	c.caller = caller(ctx, c.identity())
 	if c.requestID = plainID(ctx); c.requestID == "" {
 		c.requestID = c.reference
 	}
@@ -172,16 +233,28 @@ func (f *front) admit(c *call) error {
 		return f.refuse(api.Refuse(api.ServerDraining, "this server is about to leave; another one will answer"))
 	default:
 	}
-	if open := f.open.Add(1); open > f.most {
+	most := int64(f.rules.most(&c.use.options))
+	if open := f.open.Add(1); open > most {
 		f.open.Add(-1)
-		return f.refuse(api.OverLimit(api.ServerOverloaded, "the number of open calls,", open, f.most,
+		return f.refuse(api.OverLimit(api.ServerOverloaded, "the number of open calls,", open, most,
 			"try again later or elsewhere"))
+	}
+	if f.rules.shared {
+		if err := f.quota.enter(c.caller, int64(c.use.options.CallerCalls)); err != nil {
+			f.open.Add(-1)
+			return f.refuse(err)
+		}
 	}
 	return nil
 }
 
-// refuse counts a refusal for lack of room and says when to come back.
-func (f *front) refuse(failure *api.Failure) error {
+// refuse counts a refusal for lack of room and says when to come back. A call whose
+// time is up while it waits for room is not refused.
+func (f *front) refuse(err error) error {
+	failure, ok := errors.AsType[*api.Failure](err)
+	if !ok {
+		return err
+	}
 	f.metrics.Rejected(string(failure.Reason))
 	failure.RetryAfter = pushback
 	return failure
@@ -189,8 +262,12 @@ func (f *front) refuse(failure *api.Failure) error {
 
 // release gives the place of an admitted call back.
 func (f *front) release(c *call) {
-	if !isHealth(c.label) {
-		f.open.Add(-1)
+	if isHealth(c.label) {
+		return
+	}
+	f.open.Add(-1)
+	if f.rules.shared {
+		f.quota.leave(c.caller)
 	}
 }
 
@@ -199,22 +276,23 @@ func (f *front) end(c *call, err error) error {
 	took := time.Since(c.begun)
 	failure := api.Explain(err)
 	if failure == nil {
-		f.metrics.CallDone(c.label, "OK", took)
-		f.write(f.callLog.Well(), c, "OK", took)
+		f.metrics.CallDone(c.label, "OK", took, c.exemplar())
+		f.write(c.use.callLog.Well(), c, "OK", took)
 		return nil
 	}
 	if c.requestID != c.reference {
 		failure = failure.With("request_id", c.requestID)
 	}
+	c.SetTrailer(metadata.Pairs(traceKey, c.trace.header()))
 	if failure.RetryAfter > 0 {
 		c.SetTrailer(metadata.Pairs(pushbackKey, strconv.FormatInt(failure.RetryAfter.Milliseconds(), 10)))
 	}
 	s := failure.Status(c.reference)
 	code := codeName(s.Code())
-	f.metrics.CallDone(c.label, code, took)
-	line := f.callLog.Refused()
+	f.metrics.CallDone(c.label, code, took, c.exemplar())
+	line := c.use.callLog.Refused()
 	if failure.Reason == api.InternalFault {
-		line = f.callLog.Failed()
+		line = c.use.callLog.Failed()
 		if p, ok := errors.AsType[*api.PanicError](err); ok {
 			f.metrics.Panicked()
 			line = line.Bytes("stack", p.Stack)
@@ -225,22 +303,49 @@ func (f *front) end(c *call, err error) error {
 	return s.Err()
 }
 
-// identity is the first URI or DNS name of the caller's certificate.
-func identity(ctx context.Context) string {
+// names are the URIs and DNS names of the caller's certificate.
+func names(ctx context.Context) []string {
 	p, ok := peer.FromContext(ctx)
 	if !ok {
-		return ""
+		return nil
 	}
 	info, ok := p.AuthInfo.(credentials.TLSInfo)
 	if !ok || len(info.State.PeerCertificates) == 0 {
-		return ""
+		return nil
 	}
 	certificate := info.State.PeerCertificates[0]
-	if len(certificate.URIs) > 0 {
-		return certificate.URIs[0].String()
+	var all []string
+	for _, uri := range certificate.URIs {
+		all = append(all, uri.String())
 	}
-	if len(certificate.DNSNames) > 0 {
-		return certificate.DNSNames[0]
+	return append(all, certificate.DNSNames...)
+}
+
+// identity is the first name of the caller, by which logs call it; empty for none.
+func (c *call) identity() string {
+	if len(c.names) == 0 {
+		return ""
+	}
+	return c.names[0]
+}
+
+// caller tells callers apart: those who share a certificate by their address.
+func caller(ctx context.Context, identity string) string {
+	host := ""
+	if p, ok := peer.FromContext(ctx); ok {
+		host = p.Addr.String()
+		if h, _, err := net.SplitHostPort(host); err == nil {
+			host = h
+		}
+	}
+	return strings.Trim(identity+" "+host, " ")
+}
+
+// exemplar is the trace that the duration of the call may name: one that its caller
+// keeps.
+func (c *call) exemplar() string {
+	if c.trace.sampled {
+		return c.trace.id
 	}
 	return ""
 }

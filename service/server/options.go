@@ -3,6 +3,7 @@ package server
 import (
 	"context"
 	"net"
+	"runtime"
 	"time"
 
 	"github.com/prometheus/client_golang/prometheus"
@@ -18,6 +19,7 @@ type Options struct {
 	HealthAddress, MetricsAddress, DebugAddress string
 
 	CertificateFile, KeyFile, ClientCAFile string
+	AccessFile                             string
 	UnsafePlaintext                        bool
 
 	MessageLimit, BlockLimit, DecodedLimit, HeaderLimit Bytes
@@ -25,11 +27,13 @@ type Options struct {
 	CreditLimit, CreditPool, MemoryLimit                Bytes
 	Connections, ConnectionStreams                      int
 	GateStreams, GeneralStreams                         int
+	CallerCalls, WorkSlots                              int
 	GateStreamWindow, GateConnectionWindow              Bytes
 	GeneralStreamWindow, GeneralConnectionWindow        Bytes
 
 	HandshakeTimeout                                     time.Duration
-	ClientPingMinimum, PingInterval, PingTimeout         time.Duration
+	ClientPingMinimum, ClientPingAdvice                  time.Duration
+	PingInterval, PingTimeout                            time.Duration
 	ConnectionIdle, ConnectionAge, ConnectionAgeGrace    time.Duration
 	DefaultDeadline, LongestDeadline, StreamIdle         time.Duration
 	DrainNotice, DrainTime, StopMargin, TerminationGrace time.Duration
@@ -41,6 +45,7 @@ type Options struct {
 	SelectionFolder               string
 	Reflection                    bool
 	LogLevel                      string
+	LogBurst, LogKeepOneIn        int
 }
 
 // Deps is what a server gets from outside. Every part is optional.
@@ -55,12 +60,18 @@ type Deps struct {
 	Registry *prometheus.Registry
 	// Listen opens a listener; that of the operating system if nil.
 	Listen func(ctx context.Context, network, address string) (net.Listener, error)
-	// Authorise decides whether an identity may call a method; nil allows all. The
-	// identity is the first URI or DNS name of the caller's certificate, or empty.
-	// What it returns should be a *api.Failure.
-	Authorise func(identity, method string) error
+	// Settings reads the settings again; nil if they cannot change.
+	Settings func() (Options, error)
 	// Now tells the time to the judge; the system's clock if nil.
 	Now func() time.Time
+}
+
+// slots is how much work is done at a time on the general listener.
+func (o *Options) slots() int {
+	if o.WorkSlots > 0 {
+		return o.WorkSlots
+	}
+	return runtime.GOMAXPROCS(0)
 }
 
 // limits are the options in the form the api takes.

@@ -16,25 +16,45 @@ func (f *front) write(line *zerolog.Event, c *call, code string, took time.Durat
 	line.Str("method", printable(c.method)).
 		Str("code", code).
 		Dur("duration_ms", took).
-		Int64("received_count", c.received.Load()).
+		Func(c.writeSizes).
+		Func(c.writeOrigin).
+		Msg("call")
+}
+
+// writeSizes adds what went to and fro so far.
+func (c *call) writeSizes(line *zerolog.Event) {
+	line.Int64("received_count", c.received.Load()).
 		Int64("received_bytes", c.receivedBytes.Load()).
 		Int64("sent_count", c.sent.Load()).
-		Int64("sent_bytes", c.sentBytes.Load()).
-		Str("identity", c.identity).
+		Int64("sent_bytes", c.sentBytes.Load())
+}
+
+// writeOrigin adds who called and what joins the line to others.
+func (c *call) writeOrigin(line *zerolog.Event) {
+	line.Str("identity", c.identity()).
 		Str("request_id", c.requestID).
 		Str("reference", c.reference).
-		Msg("call")
+		Str("trace_id", c.trace.id).
+		Str("span_id", c.trace.span)
 }
 
 // writeOpened writes the line of a stream that begins; its other line comes when it
 // ends, which may be in hours.
 func (f *front) writeOpened(c *call) {
-	f.callLog.Well().
+	c.use.callLog.Well().
 		Str("method", printable(c.method)).
-		Str("identity", c.identity).
-		Str("request_id", c.requestID).
-		Str("reference", c.reference).
+		Func(c.writeOrigin).
 		Msg("stream")
+}
+
+// writeSummary writes the line of a stream that goes on.
+func (f *front) writeSummary(c *call, open time.Duration) {
+	f.current.Load().callLog.Well().
+		Str("method", printable(c.method)).
+		Dur("duration_ms", open).
+		Func(c.writeSizes).
+		Func(c.writeOrigin).
+		Msg("stream goes on")
 }
 
 // isHealth reports whether a method belongs to the health check.

@@ -32,7 +32,7 @@ func TestLogLines(t *testing.T) {
 		t.Errorf("the log holds what a caller sent: %s", r.log)
 	}
 	want := []string{"level", "method", "code", "duration_ms", "received_count", "received_bytes", "sent_count",
-		"sent_bytes", "identity", "request_id", "reference", "message"}
+		"sent_bytes", "identity", "request_id", "reference", "trace_id", "span_id", "message"}
 	codes := map[string]int{}
 	for text := range strings.Lines(r.log.String()) {
 		var line map[string]any

@@ -7,6 +7,8 @@ import (
 	"net"
 	"net/http"
 	"sync"
+	"sync/atomic"
+	"time"
 
 	"github.com/prometheus/client_golang/prometheus"
 	"github.com/prometheus/client_golang/prometheus/collectors"
@@ -32,12 +34,17 @@ type Server struct {
 	health       *health
 	certificates *certificates // nil for plaintext
 	folder       *folder       // nil for none
+	current      atomic.Pointer[inUse]
+	streams      openStreams
 	fronts       map[Listener]*front
 	webs         map[Listener]*http.Server
 	places       places
 
 	leaving chan struct{} // closed when the notice is over
 	stopped chan struct{} // closed when Shutdown is done
+
+	reloading sync.Mutex // held while settings are read again; guards lastFault
+	lastFault string     // of the settings, so that it is logged once
 
 	mu        sync.Mutex // guards the rest
 	listeners map[Listener]net.Listener
@@ -48,6 +55,7 @@ type Server struct {
 // listen yet. Faults of options and files are a fault.List or *fault.Error with names
 // of settings as fields.
 func New(options Options, deps Deps) (*Server, error) {
+	options.adoptMemoryLimit()
 	if err := options.Validate(); err != nil {
 		return nil, err
 	}
@@ -74,13 +82,20 @@ func New(options Options, deps Deps) (*Server, error) {
 		places:    places{most: int64(options.Connections), metrics: metrics},
 		leaving:   make(chan struct{}), stopped: make(chan struct{}),
 	}
+	use, err := s.prepare(options)
+	if err != nil {
+		return nil, err
+	}
+	s.current.Store(use)
+	metrics.SettingsReloaded(true, time.Now())
+	metrics.WorkSlots(options.slots())
 	s.health = newHealth(s.leaving)
 	if options.CertificateFile != "" {
-		if s.certificates, err = loadCertificates(&s.options, metrics, deps.Log); err != nil {
+		if s.certificates, err = loadCertificates(&s.options, metrics, s.log); err != nil {
 			return nil, err
 		}
 	}
-	if s.services, s.folder, err = newServices(&s.options, &deps, metrics, s.leaving); err != nil {
+	if s.services, s.folder, err = newServices(&s.options, &deps, metrics, s.log, s.leaving); err != nil {
 		return nil, err
 	}
 	s.build()
@@ -91,15 +106,16 @@ func New(options Options, deps Deps) (*Server, error) {
 func (s *Server) build() {
 	o := &s.options
 	d := &desk{
-		limits: o.limits(), metrics: s.metrics, callLog: telemetry.NewCallLog(s.deps.Log, s.deps.LogHeld),
-		authorise: s.deps.Authorise, defaultDeadline: o.DefaultDeadline, longestDeadline: o.LongestDeadline,
+		limits: o.limits(), streamIdle: o.StreamIdle, metrics: s.metrics, current: &s.current, streams: &s.streams,
 		leaving: s.leaving, nonce: newNonce(),
 	}
-	s.fronts[Gate] = s.rpcFront(d, o.GateStreams, o.GateStreamWindow, o.GateConnectionWindow, s.services.RegisterGate)
-	s.fronts[General] = s.rpcFront(d, o.GeneralStreams, o.GeneralStreamWindow, o.GeneralConnectionWindow, s.services.Register)
+	gate := rules{most: func(o *Options) int { return o.GateStreams }, private: true}
+	general := rules{most: func(o *Options) int { return o.GeneralStreams }, private: true, shared: true}
+	s.fronts[Gate] = s.rpcFront(d, gate, o.GateStreamWindow, o.GateConnectionWindow, s.services.RegisterGate)
+	s.fronts[General] = s.rpcFront(d, general, o.GeneralStreamWindow, o.GeneralConnectionWindow, s.services.Register)
 	s.health.know(s.fronts[General].server.GetServiceInfo())
 	if o.HealthAddress != "" {
-		f := newFront(d, o.GeneralStreams, s.serverOptions(o.GeneralStreamWindow, o.GeneralConnectionWindow))
+		f := newFront(d, rules{most: general.most}, s.serverOptions(o.GeneralStreamWindow, o.GeneralConnectionWindow))
 		healthpb.RegisterHealthServer(f, s.health)
 		s.fronts[Health] = f
 	}
@@ -112,12 +128,12 @@ func (s *Server) build() {
 }
 
 // rpcFront makes the front of a listener for rpcs.
-func (s *Server) rpcFront(d *desk, most int, stream, connection Bytes, register func(grpc.ServiceRegistrar)) *front {
+func (s *Server) rpcFront(d *desk, r rules, stream, connection Bytes, register func(grpc.ServiceRegistrar)) *front {
 	options := s.serverOptions(stream, connection)
 	if s.certificates != nil {
 		options = append(options, grpc.Creds(credentials.NewTLS(s.certificates.config())))
 	}
-	f := newFront(d, most, options)
+	f := newFront(d, r, options)
 	register(f)
 	healthpb.RegisterHealthServer(f, s.health)
 	if s.options.Reflection {
@@ -129,8 +145,8 @@ func (s *Server) rpcFront(d *desk, most int, stream, connection Bytes, register 
 }
 
 // newFront makes a front with its gRPC server.
-func newFront(d *desk, most int, options []grpc.ServerOption) *front {
-	f := &front{desk: d, most: int64(most)}
+func newFront(d *desk, r rules, options []grpc.ServerOption) *front {
+	f := &front{desk: d, rules: r, work: &workQueue{metrics: d.metrics}}
 	f.server = grpc.NewServer(append(options,
 		grpc.UnknownServiceHandler(f.unknown), grpc.InTapHandle(f.tapped), grpc.ForceServerCodecV2(codec{}))...)
 	return f
@@ -216,6 +232,8 @@ func (s *Server) Serve(ctx context.Context) error {
 	if s.certificates != nil {
 		go s.contained("watching certificate files", func() { s.certificates.watch(ctx) })
 	}
+	go s.contained("watching settings", func() { s.watchSettings(ctx) })
+	go s.contained("watching streams", func() { s.streams.watch(ctx) })
 	failed := make(chan error, len(s.fronts)+len(s.webs))
 	s.mu.Lock()
 	for name, f := range s.fronts {
@@ -258,7 +276,7 @@ func (s *Server) contained(what string, body func()) {
 	err := api.Contain(func() error { body(); return nil })
 	if p, ok := errors.AsType[*api.PanicError](err); ok {
 		s.metrics.Panicked()
-		s.deps.Log.Error().Err(err).Bytes("stack", p.Stack).Msg(what)
+		s.log().Error().Err(err).Bytes("stack", p.Stack).Msg(what)
 	}
 }
 

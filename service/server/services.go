@@ -4,6 +4,8 @@ import (
 	"errors"
 	"fmt"
 
+	"github.com/rs/zerolog"
+
 	"example.org/kinegate/kinematics/fault"
 	"example.org/kinegate/kinematics/particle"
 	"example.org/kinegate/service/api"
@@ -12,7 +14,7 @@ import (
 
 // newServices makes the rpc services from the files that the options name, and the
 // folder to watch, if there is one. Faults of all files are reported at once.
-func newServices(o *Options, deps *Deps, metrics *telemetry.Metrics, leaving <-chan struct{}) (*api.Services, *folder, error) {
+func newServices(o *Options, deps *Deps, metrics *telemetry.Metrics, log func() *zerolog.Logger, leaving <-chan struct{}) (*api.Services, *folder, error) {
 	table, err := loadTable(o.ParticleFiles)
 	if err != nil {
 		return nil, nil, err
@@ -22,7 +24,7 @@ func newServices(o *Options, deps *Deps, metrics *telemetry.Metrics, leaving <-c
 	var watched *folder
 	if o.SelectionFolder != "" {
 		var folderErr error
-		watched, folderErr = loadFolder(o.SelectionFolder, library, names, metrics, deps.Log)
+		watched, folderErr = loadFolder(o.SelectionFolder, library, names, metrics, log)
 		err = errors.Join(err, folderErr)
 	}
 	if err != nil {

@@ -76,7 +76,7 @@ func (s *Server) stop() {
 	select {
 	case <-done:
 	case <-margin.C:
-		s.deps.Log.Error().Msg("a handler did not return after its connection was cut")
+		s.log().Error().Msg("a handler did not return after its connection was cut")
 	}
 }
 

@@ -77,6 +77,10 @@ func (o *Options) credentialFaults() fault.List {
 		faults = append(faults, clash("client_ca_file", o.ClientCAFile, "only with certificate_file",
 			"callers show certificates over TLS only"))
 	}
+	if o.AccessFile != "" && o.ClientCAFile == "" {
+		faults = append(faults, clash("access_file", o.AccessFile, "only with client_ca_file",
+			"without certificates of callers nobody could be told apart"))
+	}
 	if o.CertificateFile != "" || o.UnsafePlaintext {
 		return faults
 	}
@@ -122,6 +126,11 @@ func (o *Options) sizeFaults() fault.List {
 			"at most general_streams, "+strconv.Itoa(o.GeneralStreams),
 			"one connection could take every place of general_streams"))
 	}
+	if o.CallerCalls > o.ConnectionStreams {
+		faults = append(faults, clash("caller_calls", strconv.Itoa(o.CallerCalls),
+			"at most connection_streams, "+strconv.Itoa(o.ConnectionStreams),
+			"calls over connection_streams would wait in the caller, where nobody sees them, before any is refused"))
+	}
 	return faults
 }
 
@@ -135,6 +144,10 @@ func (o *Options) timeFaults() fault.List {
 	if o.DefaultDeadline > o.LongestDeadline {
 		faults = append(faults, clash("default_deadline", o.DefaultDeadline.String(),
 			"at most longest_deadline, "+o.LongestDeadline.String(), "it is above longest_deadline"))
+	}
+	if o.ClientPingAdvice < o.ClientPingMinimum {
+		faults = append(faults, clash("client_ping_advice", o.ClientPingAdvice.String(),
+			"at least client_ping_minimum, "+o.ClientPingMinimum.String(), "the server would cut off such clients"))
 	}
 	if o.PingTimeout > o.PingInterval {
 		faults = append(faults, clash("ping_timeout", o.PingTimeout.String(),

@@ -84,6 +84,13 @@ func count(at *int, most int) Value {
 	}, strconv.Itoa}
 }
 
+// countFromZero is a number that may be none.
+func countFromZero(at *int, most int) Value {
+	v, _ := count(at, most).(ordered[int])
+	v.min = 0
+	return v
+}
+
 func span(at *time.Duration, least, most time.Duration) Value {
 	return ordered[time.Duration]{at, least, most, "time", func(s string) (time.Duration, bool) {
 		d, err := time.ParseDuration(s)

@@ -7,14 +7,20 @@ import (
 	"github.com/rs/zerolog"
 )
 
-// How many lines of finished calls are written. Above the burst one in a hundred
-// lines of calls that went well is kept, and none of those that failed: metrics
-// count every call, lines are for examples.
-const (
-	burstLines  = 100
-	burstPeriod = time.Second
-	keepOneIn   = 100
-)
+// burstPeriod is the time that a burst of lines is counted in.
+const burstPeriod = time.Second
+
+// Sampling says how many lines of finished calls are written. Above the burst some
+// lines of calls that went well are kept, and none of those that failed: metrics count
+// every call, lines are for examples.
+type Sampling struct {
+	// Burst is how many lines of each kind are written in a second before any is held
+	// back.
+	Burst int
+	// KeepOneIn is how many lines of calls that went well are held back for each that
+	// is kept.
+	KeepOneIn int
+}
 
 // NewLogger returns a logger that writes JSON lines to w, from the given level up.
 // The level is one of debug, info, warn, error.
@@ -33,15 +39,16 @@ type CallLog struct {
 
 // NewCallLog returns a CallLog on a logger; dropped is called for each line of a
 // failed call that was held back, and may be nil.
-func NewCallLog(log zerolog.Logger, dropped func()) *CallLog {
+func NewCallLog(log zerolog.Logger, sampling Sampling, dropped func()) *CallLog {
 	if dropped == nil {
 		dropped = func() {}
 	}
+	//nolint:gosec // both are at most 1<<30
 	burst := func(then zerolog.Sampler) zerolog.Logger {
-		return log.Sample(&zerolog.BurstSampler{Burst: burstLines, Period: burstPeriod, NextSampler: then})
+		return log.Sample(&zerolog.BurstSampler{Burst: uint32(sampling.Burst), Period: burstPeriod, NextSampler: then})
 	}
 	return &CallLog{
-		well:    burst(&zerolog.BasicSampler{N: keepOneIn}),
+		well:    burst(&zerolog.BasicSampler{N: uint32(sampling.KeepOneIn)}),
 		refused: burst(held(dropped)),
 		// Apart from the refused ones, so that a flood of those hides no fault of ours.
 		failed: burst(held(dropped)),

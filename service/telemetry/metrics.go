@@ -2,6 +2,7 @@ package telemetry
 
 import (
 	"fmt"
+	"slices"
 	"time"
 
 	"github.com/prometheus/client_golang/prometheus"
@@ -32,6 +33,8 @@ type Metrics struct {
 	expiry      *prometheus.GaugeVec
 	reloaded    prometheus.Gauge
 	selections  prometheus.Gauge
+	settings    reloadMetrics
+	work        workMetrics
 	streams     streamMetrics
 }
 
@@ -85,7 +88,9 @@ func NewMetrics(r prometheus.Registerer, version string) (*Metrics, error) {
 			Name: "kinegate_selection_reload_success",
 			Help: "1 if every file of the folder of selections was sound when last read, 0 if an old version is kept.",
 		}),
-		streams: newStreamMetrics(),
+		settings: newReloadMetrics(),
+		work:     newWorkMetrics(),
+		streams:  newStreamMetrics(),
 	}
 	build := prometheus.NewGauge(prometheus.GaugeOpts{
 		Name:        "kinegate_build_info",
@@ -93,7 +98,8 @@ func NewMetrics(r prometheus.Registerer, version string) (*Metrics, error) {
 		ConstLabels: prometheus.Labels{"version": version},
 	})
 	build.Set(1)
-	all := append(m.streams.all(), m.duration, m.calls, m.inFlight, m.rejected, m.panics,
+	all := slices.Concat(m.streams.all(), m.work.all(), m.settings.all())
+	all = append(all, m.duration, m.calls, m.inFlight, m.rejected, m.panics,
 		m.connections, m.draining, m.expiry, m.reloaded, m.selections, build)
 	for _, c := range all {
 		if err := r.Register(c); err != nil {
@@ -106,11 +112,17 @@ func NewMetrics(r prometheus.Registerer, version string) (*Metrics, error) {
 // CallStarted counts a call in.
 func (m *Metrics) CallStarted(method string) { m.inFlight.WithLabelValues(method).Inc() }
 
-// CallDone counts a call out.
-func (m *Metrics) CallDone(method, code string, took time.Duration) {
+// CallDone counts a call out. The trace, if there is one, becomes an example of calls
+// that took as long.
+func (m *Metrics) CallDone(method, code string, took time.Duration, trace string) {
 	m.inFlight.WithLabelValues(method).Dec()
 	m.calls.WithLabelValues(method, code).Inc()
-	m.duration.WithLabelValues(method).Observe(took.Seconds())
+	duration := m.duration.WithLabelValues(method)
+	if exemplary, ok := duration.(prometheus.ExemplarObserver); ok && trace != "" {
+		exemplary.ObserveWithExemplar(took.Seconds(), prometheus.Labels{"trace_id": trace})
+		return
+	}
+	duration.Observe(took.Seconds())
 }
 
 // Rejected counts a call or connection refused before any work.

@@ -29,13 +29,17 @@ func used(t *testing.T) (*Metrics, *prometheus.Registry) {
 		t.Fatal(err)
 	}
 	m.CallStarted("/a/B")
-	m.CallDone("/a/B", "OK", time.Millisecond)
+	m.CallDone("/a/B", "OK", time.Millisecond, "")
 	m.Rejected("SERVER_OVERLOADED")
 	m.Panicked()
 	m.Connections(1)
 	m.Draining()
 	m.CertificateExpiry("server", time.Unix(1, 0))
 	m.CertificatesReloaded(true)
+	m.SettingsReloaded(true, time.Unix(1, 0))
+	m.WorkSlots(2)
+	m.WorkInUse(0.5)
+	m.WorkAdmitted(time.Millisecond)
 	m.StreamOpened()
 	m.StreamClosed("done")
 	m.EventsJudged("accepted", 3)
@@ -121,7 +125,7 @@ func TestNativeHistogramsAreBounded(t *testing.T) {
 	for i := range 12000 {
 		d := time.Duration(math.Pow(10, float64(i%12000)/1000) * float64(time.Nanosecond))
 		m.CallStarted("/a/B")
-		m.CallDone("/a/B", "OK", d)
+		m.CallDone("/a/B", "OK", d, "")
 		m.BlockAnswered(d)
 	}
 	for _, name := range []string{"rpc_server_call_duration_seconds", "kinegate_judge_block_latency_seconds"} {

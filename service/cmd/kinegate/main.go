@@ -5,15 +5,10 @@ package main
 import (
 	"context"
 	"os"
-	"os/signal"
-	"syscall"
 )
 
 func main() {
-	// A burst of signals beyond the second says nothing new.
-	signals := make(chan os.Signal, 2)
-	signal.Notify(signals, os.Interrupt, syscall.SIGTERM)
 	os.Exit(run(context.Background(), program{
-		in: os.Stdin, out: os.Stdout, err: os.Stderr, environ: os.Environ(), signals: signals,
+		in: os.Stdin, out: os.Stdout, err: os.Stderr, environ: os.Environ(),
 	}, os.Args[1:]))
 }

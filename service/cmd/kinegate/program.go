@@ -17,7 +17,7 @@ type program struct {
 	in       io.Reader
 	out, err io.Writer
 	environ  []string
-	signals  <-chan os.Signal
+	signals  <-chan os.Signal // for serve; those of the process if nil
 }
 
 // Exit codes that scripts can rely on.

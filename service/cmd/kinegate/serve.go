@@ -5,6 +5,11 @@ import (
 	"errors"
 	"fmt"
 	"os"
+	"os/signal"
+	"runtime/debug"
+	"slices"
+	"strings"
+	"syscall"
 
 	"github.com/prometheus/client_golang/prometheus"
 	"github.com/spf13/cobra"
@@ -24,6 +29,8 @@ func serveCommand(p program) *cobra.Command {
 		Long: "serve runs the gRPC server. Each setting is a flag, a variable of the environment\n" +
 			"(KINEGATE_ and its name in capitals) or a key of the file named by --config; the first\n" +
 			"of these that gives it wins.\n\n" +
+			"The file, the access file, certificates and the folder of selections are read again when\n" +
+			"they change, the first two also on SIGHUP; what is not sound stays as it was.\n\n" +
 			"SIGTERM and SIGINT drain it: health turns NOT_SERVING, calls are answered until the\n" +
 			"notice and the time to drain are over, then it exits with 0. A second signal stops it\n" +
 			"at once. Faults of the configuration exit with 2, a server that fails with 1.",
@@ -74,9 +81,7 @@ func (g given) Type() string { return g.kind }
 
 // run finds the settings and does what was asked with them.
 func (s *serving) run(ctx context.Context) error {
-	options, all, err := config.Load(config.Sources{
-		Flags: s.flags, Environ: s.environ, ReadFile: os.ReadFile,
-	})
+	options, all, err := s.settings()
 	if s.printOnly {
 		if printErr := config.Print(s.out, all); printErr != nil {
 			return printErr
@@ -94,12 +99,17 @@ func (s *serving) run(ctx context.Context) error {
 	if err != nil {
 		return usageError{err}
 	}
+	s.keepMemory(&options)
 	registry := prometheus.NewRegistry()
 	if err := telemetry.CountDropped(registry, lines.Dropped); err != nil {
 		return err
 	}
 	server, err := server.New(options, server.Deps{
 		Version: version(), Log: log, LogHeld: lines.Drop, Registry: registry,
+		Settings: func() (server.Options, error) {
+			options, _, err := s.settings()
+			return options, err
+		},
 	})
 	if err != nil {
 		return usageError{err}
@@ -108,6 +118,38 @@ func (s *serving) run(ctx context.Context) error {
 		return nil
 	}
 	return s.serve(ctx, server, func(text string) { log.Info().Msg(text) })
+}
+
+// settings reads the settings from all their sources.
+func (s *serving) settings() (server.Options, []config.Effective, error) {
+	return config.Load(config.Sources{Flags: s.flags, Environ: s.environ, ReadFile: os.ReadFile})
+}
+
+// keepMemory makes the runtime work harder before it passes the memory limit, unless
+// the environment tells it to do otherwise.
+func (s *serving) keepMemory(options *server.Options) {
+	told := slices.ContainsFunc(s.environ, func(line string) bool { return strings.HasPrefix(line, "GOMEMLIMIT=") })
+	if limit := options.HeapLimit(); limit > 0 && !told && !s.validateOnly {
+		debug.SetMemoryLimit(limit)
+	}
+}
+
+// stopped waits for a signal to stop, or for ctx or the server to end before one comes.
+// SIGHUP is a signal to read the settings again.
+func (s *serving) stopped(ctx context.Context, running *server.Server, failed <-chan error) error {
+	for {
+		select {
+		case err := <-failed:
+			return err
+		case <-ctx.Done():
+			return nil
+		case signal := <-s.signals:
+			if signal != syscall.SIGHUP {
+				return nil
+			}
+			_ = running.Reload() // it has reported
+		}
+	}
 }
 
 // serve runs the server until a signal has stopped it or it fails.
@@ -120,22 +162,25 @@ func (s *serving) serve(ctx context.Context, running *server.Server, say func(st
 			say(fmt.Sprintf("listening for %s at %s", name, a))
 		}
 	}
+	if s.signals == nil {
+		// Only here: other commands end by a signal at once. A burst of signals beyond
+		// the second says nothing new.
+		signals := make(chan os.Signal, 2)
+		signal.Notify(signals, os.Interrupt, syscall.SIGTERM, syscall.SIGHUP)
+		defer signal.Stop(signals)
+		s.signals = signals
+	}
 	failed := make(chan error, 1)
 	go func() { failed <- running.Serve(ctx) }()
-	select {
-	case err := <-failed:
+	if err := s.stopped(context.Background(), running, failed); err != nil {
 		return err
-	case <-s.signals:
 	}
 	say("draining")
 	ctx, cancel := context.WithCancel(ctx)
 	defer cancel()
 	go func() {
-		select {
-		case <-s.signals:
-			cancel()
-		case <-ctx.Done():
-		}
+		_ = s.stopped(ctx, running, nil) // a second signal
+		cancel()
 	}()
 	if err := running.Shutdown(ctx); errors.Is(err, server.ErrCut) {
 		say(err.Error())

@@ -1,0 +1,28 @@
+package api
+
+import (
+	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+)
+
+// SlotShares are the shares of a slot, which is the work that one processor does at a
+// time. A call of a few formulas takes one share: so many of them may be open for each
+// processor.
+const SlotShares = 64
+
+// rowsPerShare is how many measured objects judging takes another share for. Objects
+// are events times their multiplicity, on which both time and memory depend. Blocks of
+// a few thousand objects take a slot of their own: they keep a processor busy for
+// milliseconds.
+const rowsPerShare = 64
+
+// Cost is the part of a slot, in shares from 1 to SlotShares, that answering a unary
+// request takes.
+func Cost(request any) int {
+	switch m := request.(type) {
+	case *kinegatev1.JudgeBlockRequest:
+		return min(1+len(m.GetBlock().GetObjectClasses())/rowsPerShare, SlotShares)
+	case *kinegatev1.ListOpenChannelsRequest, *kinegatev1.TraceDalitzBoundaryRequest:
+		return SlotShares
+	}
+	return 1
+}
