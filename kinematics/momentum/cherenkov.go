@@ -52,7 +52,7 @@ func (m *Motion) Cherenkov(index float64) (Cherenkov, error) {
 	}
 	reach := float64(m.Momentum * r)
 	if c.Radiates = reach > m.Mass; c.Radiates {
-		c.Angle = num.Atan2(math.Sqrt((reach-m.Mass)*(reach+m.Mass)), m.Total)
+		c.Angle = num.Atan2(math.Sqrt(reach-m.Mass)*math.Sqrt(reach+m.Mass), m.Total)
 	}
 	return c, nil
 }

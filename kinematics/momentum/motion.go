@@ -74,8 +74,8 @@ func MotionFromTotal(m, e float64) (Motion, error) {
 // A massless particle has no energy fixed by its velocity: an Invalid fault.
 func MotionFromBeta(m, beta float64) (Motion, error) {
 	const op = "momentum.MotionFromBeta"
-	if !(m > 0) || math.IsInf(m, 0) {
-		return Motion{}, fault.Number("mass_gev", m, "> 0 and finite").In(op)
+	if !(m >= leastMotion && m <= largestMotion) {
+		return Motion{}, fault.Number("mass_gev", m, "within 1e-75..1e75").In(op)
 	}
 	if !(beta >= 0 && beta < 1) {
 		return Motion{}, fault.Number("beta", beta, ">= 0 and < 1").In(op)
@@ -92,28 +92,36 @@ func MotionFromBeta(m, beta float64) (Motion, error) {
 //	p = m sqrt((gamma-1)(gamma+1)),  T = m (gamma-1)
 func MotionFromGamma(m, gamma float64) (Motion, error) {
 	const op = "momentum.MotionFromGamma"
-	if !(m > 0) || math.IsInf(m, 0) {
-		return Motion{}, fault.Number("mass_gev", m, "> 0 and finite").In(op)
+	if !(m >= leastMotion && m <= largestMotion) {
+		return Motion{}, fault.Number("mass_gev", m, "within 1e-75..1e75").In(op)
 	}
-	if !(gamma >= 1) || math.IsInf(gamma, 0) {
-		return Motion{}, fault.Number("gamma", gamma, ">= 1 and finite").In(op)
+	if !(gamma >= 1 && gamma <= largestMotion) {
+		return Motion{}, fault.Number("gamma", gamma, ">= 1 and <= 1e75").In(op)
 	}
 	state := motion(m, m*gamma, m*math.Sqrt((gamma-1)*(gamma+1)))
 	state.Kinetic, state.Gamma, state.GammaMinusOne = m*(gamma-1), gamma, gamma-1
 	return state, nil
 }
 
+// Ends of the range of masses, energies and momenta: their squares stay inside the
+// doubles.
+const (
+	leastMotion   = 1e-75
+	largestMotion = 1e75
+)
+
 // checkMotion refuses a mass or value out of range, and a massless particle at rest.
 func checkMotion(op, field string, m, value, least float64) error {
-	if err := checkMass(op, "mass_gev", m); err != nil {
-		return err
+	if m != 0 && !(m >= leastMotion && m <= largestMotion) {
+		return fault.Number("mass_gev", m, "0 or within 1e-75..1e75").In(op)
 	}
-	if !(value >= least) || math.IsInf(value, 0) || (m == 0 && value == 0) {
-		allowed := ">= " + fault.Text(least) + " and finite"
-		if m == 0 {
-			allowed = "> 0 and finite"
-		}
-		return fault.Number(field, value, allowed).In(op)
+	switch {
+	case m == 0 && !(value >= leastMotion && value <= largestMotion):
+		return fault.Number(field, value, "within 1e-75..1e75 for a massless particle").In(op)
+	case !(value >= least):
+		return fault.Number(field, value, ">= "+fault.Text(least)+" and <= 1e75").In(op)
+	case value != 0 && !(value >= leastMotion && value <= largestMotion):
+		return fault.Number(field, value, "0 or within 1e-75..1e75").In(op)
 	}
 	return nil
 }

@@ -123,6 +123,10 @@ func (q *Query) checkValue(op string, i int, x float64) error {
 // directions returns where the product in question goes in the centre-of-mass frame,
 // from the direction of the first initial body.
 func (r *TwoBody) directions(q Query, x float64) []breakup.Direction {
+	const beyond = 1e65 // energies are at most 1e30 GeV, and their squares stay below this
+	if math.Abs(x) > beyond {
+		return nil
+	}
 	switch q.Variable {
 	case CMAngle:
 		return []breakup.Direction{r.fromZ(breakup.AtAngle(x))}
