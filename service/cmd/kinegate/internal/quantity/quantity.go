@@ -50,6 +50,7 @@ var units = []unit{
 	{"fm", Length, -15, 0}, {"pm", Length, -12, 0}, {"nm", Length, -9, 0}, {"um", Length, -6, 0},
 	{"mm", Length, -3, 0}, {"cm", Length, -2, 0}, {"m", Length, 0, 0}, {"km", Length, 3, 0},
 	{"pc", Length, 0, MetrePerParsec}, {"kpc", Length, 3, MetrePerParsec}, {"Mpc", Length, 6, MetrePerParsec},
+	{"Gpc", Length, 9, MetrePerParsec},
 	{"as", Time, -18, 0}, {"fs", Time, -15, 0}, {"ps", Time, -12, 0}, {"ns", Time, -9, 0},
 	{"us", Time, -6, 0}, {"ms", Time, -3, 0}, {"s", Time, 0, 0},
 	{"Hz", Frequency, 0, 0}, {"kHz", Frequency, 3, 0}, {"MHz", Frequency, 6, 0}, {"GHz", Frequency, 9, 0},
