@@ -106,14 +106,14 @@ func beyond(seen, faults fault.List) fault.List {
 	return news
 }
 
-// selectionFaults converts faults for the caller. The position stands in fields of
+// fieldFaults converts faults for the caller. The position stands in fields of
 // its own and not in the message.
-func selectionFaults(faults fault.List) []*kinegatev1.SelectionFault {
-	var messages []*kinegatev1.SelectionFault
+func fieldFaults(faults fault.List) []*kinegatev1.FieldFault {
+	var messages []*kinegatev1.FieldFault
 	for _, f := range faults {
 		bare := *f
 		bare.Field, bare.Line, bare.Column = "", 0, 0
-		messages = append(messages, &kinegatev1.SelectionFault{
+		messages = append(messages, &kinegatev1.FieldFault{
 			Field: f.Field, Message: sentence(&bare), Line: int32(f.Line), Column: int32(f.Column), //nolint:gosec // texts are below 4 MiB
 		})
 	}

@@ -54,7 +54,7 @@ func (s *selectionService) CheckSelection(_ context.Context, request *kinegatev1
 		return nil, fault.New(fault.Invalid, "form", "empty", "selection or yaml")
 	}
 	if len(faults) > 0 {
-		response.Faults = selectionFaults(faults)
+		response.Faults = fieldFaults(faults)
 		return response, nil
 	}
 	response.SelectionDigest = c.digest

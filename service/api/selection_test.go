@@ -54,7 +54,7 @@ hypotheses:
 func TestCheckNamesEveryFaultAtOnce(t *testing.T) {
 	t.Parallel()
 	reply := checkText(t, faulty)
-	if !slices.IsSortedFunc(reply.GetFaults(), func(a, b *kinegatev1.SelectionFault) int { return int(a.GetLine() - b.GetLine()) }) {
+	if !slices.IsSortedFunc(reply.GetFaults(), func(a, b *kinegatev1.FieldFault) int { return int(a.GetLine() - b.GetLine()) }) {
 		t.Error("the faults are not in the order of the text")
 	}
 	for _, want := range []struct {

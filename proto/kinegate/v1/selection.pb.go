@@ -2458,7 +2458,7 @@ func (*CheckSelectionRequest_Yaml) isCheckSelectionRequest_Form() {}
 type CheckSelectionResponse struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
 	// Every fault found; empty where the selection can be used.
-	Faults []*SelectionFault `protobuf:"bytes,1,rep,name=faults,proto3" json:"faults,omitempty"`
+	Faults []*FieldFault `protobuf:"bytes,1,rep,name=faults,proto3" json:"faults,omitempty"`
 	// The selection as understood; absent where the text could not be read.
 	Selection *Selection `protobuf:"bytes,2,opt,name=selection,proto3" json:"selection,omitempty"`
 	// Digest of the selection with the server's particle table and numerics
@@ -2503,7 +2503,7 @@ func (*CheckSelectionResponse) Descriptor() ([]byte, []int) {
 	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{28}
 }
 
-func (x *CheckSelectionResponse) GetFaults() []*SelectionFault {
+func (x *CheckSelectionResponse) GetFaults() []*FieldFault {
 	if x != nil {
 		return x.Faults
 	}
@@ -2538,79 +2538,6 @@ func (x *CheckSelectionResponse) GetLargestReplyByteCount() int64 {
 	return 0
 }
 
-// SelectionFault is one fault of a selection.
-type SelectionFault struct {
-	state protoimpl.MessageState `protogen:"open.v1"`
-	// Path of the field, such as "hypotheses[1].condition.all_of[0].window".
-	Field string `protobuf:"bytes,1,opt,name=field,proto3" json:"field,omitempty"`
-	// What is wrong: the value and what is allowed.
-	Message string `protobuf:"bytes,2,opt,name=message,proto3" json:"message,omitempty"`
-	// Line in the YAML text, from 1; 0 where there was no text.
-	Line int32 `protobuf:"varint,3,opt,name=line,proto3" json:"line,omitempty"`
-	// Column in the YAML text, from 1; 0 where there was no text.
-	Column        int32 `protobuf:"varint,4,opt,name=column,proto3" json:"column,omitempty"`
-	unknownFields protoimpl.UnknownFields
-	sizeCache     protoimpl.SizeCache
-}
-
-func (x *SelectionFault) Reset() {
-	*x = SelectionFault{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[29]
-	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
-	ms.StoreMessageInfo(mi)
-}
-
-func (x *SelectionFault) String() string {
-	return protoimpl.X.MessageStringOf(x)
-}
-
-func (*SelectionFault) ProtoMessage() {}
-
-func (x *SelectionFault) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[29]
-	if x != nil {
-		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
-		if ms.LoadMessageInfo() == nil {
-			ms.StoreMessageInfo(mi)
-		}
-		return ms
-	}
-	return mi.MessageOf(x)
-}
-
-// Deprecated: Use SelectionFault.ProtoReflect.Descriptor instead.
-func (*SelectionFault) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{29}
-}
-
-func (x *SelectionFault) GetField() string {
-	if x != nil {
-		return x.Field
-	}
-	return ""
-}
-
-func (x *SelectionFault) GetMessage() string {
-	if x != nil {
-		return x.Message
-	}
-	return ""
-}
-
-func (x *SelectionFault) GetLine() int32 {
-	if x != nil {
-		return x.Line
-	}
-	return 0
-}
-
-func (x *SelectionFault) GetColumn() int32 {
-	if x != nil {
-		return x.Column
-	}
-	return 0
-}
-
 // HypothesisOutline is how one hypothesis was understood.
 type HypothesisOutline struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
@@ -2629,7 +2556,7 @@ type HypothesisOutline struct {
 
 func (x *HypothesisOutline) Reset() {
 	*x = HypothesisOutline{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[30]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[29]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2641,7 +2568,7 @@ func (x *HypothesisOutline) String() string {
 func (*HypothesisOutline) ProtoMessage() {}
 
 func (x *HypothesisOutline) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[30]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[29]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -2654,7 +2581,7 @@ func (x *HypothesisOutline) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use HypothesisOutline.ProtoReflect.Descriptor instead.
 func (*HypothesisOutline) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{30}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{29}
 }
 
 func (x *HypothesisOutline) GetName() string {
@@ -2700,7 +2627,7 @@ type JudgeBlockRequest struct {
 
 func (x *JudgeBlockRequest) Reset() {
 	*x = JudgeBlockRequest{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[31]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[30]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2712,7 +2639,7 @@ func (x *JudgeBlockRequest) String() string {
 func (*JudgeBlockRequest) ProtoMessage() {}
 
 func (x *JudgeBlockRequest) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[31]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[30]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -2725,7 +2652,7 @@ func (x *JudgeBlockRequest) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use JudgeBlockRequest.ProtoReflect.Descriptor instead.
 func (*JudgeBlockRequest) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{31}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{30}
 }
 
 func (x *JudgeBlockRequest) GetSelection() *SelectionSource {
@@ -2760,7 +2687,7 @@ type JudgeBlockResponse struct {
 
 func (x *JudgeBlockResponse) Reset() {
 	*x = JudgeBlockResponse{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[32]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[31]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2772,7 +2699,7 @@ func (x *JudgeBlockResponse) String() string {
 func (*JudgeBlockResponse) ProtoMessage() {}
 
 func (x *JudgeBlockResponse) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[32]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[31]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -2785,7 +2712,7 @@ func (x *JudgeBlockResponse) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use JudgeBlockResponse.ProtoReflect.Descriptor instead.
 func (*JudgeBlockResponse) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{32}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{31}
 }
 
 func (x *JudgeBlockResponse) GetVerdict() *VerdictBlock {
@@ -2811,7 +2738,7 @@ type SelectionSource struct {
 
 func (x *SelectionSource) Reset() {
 	*x = SelectionSource{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[33]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[32]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2823,7 +2750,7 @@ func (x *SelectionSource) String() string {
 func (*SelectionSource) ProtoMessage() {}
 
 func (x *SelectionSource) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[33]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[32]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -2836,7 +2763,7 @@ func (x *SelectionSource) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use SelectionSource.ProtoReflect.Descriptor instead.
 func (*SelectionSource) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{33}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{32}
 }
 
 func (x *SelectionSource) GetSource() isSelectionSource_Source {
@@ -2895,7 +2822,7 @@ type SelectionReference struct {
 
 func (x *SelectionReference) Reset() {
 	*x = SelectionReference{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[34]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[33]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2907,7 +2834,7 @@ func (x *SelectionReference) String() string {
 func (*SelectionReference) ProtoMessage() {}
 
 func (x *SelectionReference) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[34]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[33]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -2920,7 +2847,7 @@ func (x *SelectionReference) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use SelectionReference.ProtoReflect.Descriptor instead.
 func (*SelectionReference) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{34}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{33}
 }
 
 func (x *SelectionReference) GetName() string {
@@ -2954,7 +2881,7 @@ type JudgeRequest struct {
 
 func (x *JudgeRequest) Reset() {
 	*x = JudgeRequest{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[35]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[34]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2966,7 +2893,7 @@ func (x *JudgeRequest) String() string {
 func (*JudgeRequest) ProtoMessage() {}
 
 func (x *JudgeRequest) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[35]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[34]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -2979,7 +2906,7 @@ func (x *JudgeRequest) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use JudgeRequest.ProtoReflect.Descriptor instead.
 func (*JudgeRequest) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{35}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{34}
 }
 
 func (x *JudgeRequest) GetFrame() isJudgeRequest_Frame {
@@ -3059,7 +2986,7 @@ type JudgeResponse struct {
 
 func (x *JudgeResponse) Reset() {
 	*x = JudgeResponse{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[36]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[35]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -3071,7 +2998,7 @@ func (x *JudgeResponse) String() string {
 func (*JudgeResponse) ProtoMessage() {}
 
 func (x *JudgeResponse) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[36]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[35]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -3084,7 +3011,7 @@ func (x *JudgeResponse) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use JudgeResponse.ProtoReflect.Descriptor instead.
 func (*JudgeResponse) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{36}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{35}
 }
 
 func (x *JudgeResponse) GetFrame() isJudgeResponse_Frame {
@@ -3189,7 +3116,7 @@ type JudgeOpen struct {
 
 func (x *JudgeOpen) Reset() {
 	*x = JudgeOpen{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[37]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[36]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -3201,7 +3128,7 @@ func (x *JudgeOpen) String() string {
 func (*JudgeOpen) ProtoMessage() {}
 
 func (x *JudgeOpen) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[37]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[36]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -3214,7 +3141,7 @@ func (x *JudgeOpen) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use JudgeOpen.ProtoReflect.Descriptor instead.
 func (*JudgeOpen) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{37}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{36}
 }
 
 func (x *JudgeOpen) GetSelection() *SelectionSource {
@@ -3276,7 +3203,7 @@ type JudgeOpened struct {
 
 func (x *JudgeOpened) Reset() {
 	*x = JudgeOpened{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[38]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[37]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -3288,7 +3215,7 @@ func (x *JudgeOpened) String() string {
 func (*JudgeOpened) ProtoMessage() {}
 
 func (x *JudgeOpened) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[38]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[37]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -3301,7 +3228,7 @@ func (x *JudgeOpened) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use JudgeOpened.ProtoReflect.Descriptor instead.
 func (*JudgeOpened) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{38}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{37}
 }
 
 func (x *JudgeOpened) GetSelectionDigest() string {
@@ -3346,7 +3273,7 @@ type Credit struct {
 
 func (x *Credit) Reset() {
 	*x = Credit{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[39]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[38]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -3358,7 +3285,7 @@ func (x *Credit) String() string {
 func (*Credit) ProtoMessage() {}
 
 func (x *Credit) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[39]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[38]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -3371,7 +3298,7 @@ func (x *Credit) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use Credit.ProtoReflect.Descriptor instead.
 func (*Credit) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{39}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{38}
 }
 
 func (x *Credit) GetBlockCount() int64 {
@@ -3404,7 +3331,7 @@ type Heartbeat struct {
 
 func (x *Heartbeat) Reset() {
 	*x = Heartbeat{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[40]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[39]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -3416,7 +3343,7 @@ func (x *Heartbeat) String() string {
 func (*Heartbeat) ProtoMessage() {}
 
 func (x *Heartbeat) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[40]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[39]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -3429,7 +3356,7 @@ func (x *Heartbeat) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use Heartbeat.ProtoReflect.Descriptor instead.
 func (*Heartbeat) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{40}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{39}
 }
 
 func (x *Heartbeat) GetReceivedSequence() int64 {
@@ -3467,7 +3394,7 @@ type Draining struct {
 
 func (x *Draining) Reset() {
 	*x = Draining{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[41]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[40]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -3479,7 +3406,7 @@ func (x *Draining) String() string {
 func (*Draining) ProtoMessage() {}
 
 func (x *Draining) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[41]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[40]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -3492,7 +3419,7 @@ func (x *Draining) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use Draining.ProtoReflect.Descriptor instead.
 func (*Draining) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{41}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{40}
 }
 
 func (x *Draining) GetAnsweredSequence() int64 {
@@ -3513,7 +3440,7 @@ var File_kinegate_v1_selection_proto protoreflect.FileDescriptor
 
 const file_kinegate_v1_selection_proto_rawDesc = "" +
 	"\n" +
-	"\x1bkinegate/v1/selection.proto\x12\vkinegate.v1\x1a\x17kinegate/v1/event.proto\x1a\x16kinegate/v1/info.proto\x1a\x1ckinegate/v1/kinematics.proto\x1a\x1akinegate/v1/reaction.proto\x1a\x19kinegate/v1/verdict.proto\"\xde\x01\n" +
+	"\x1bkinegate/v1/selection.proto\x12\vkinegate.v1\x1a\x17kinegate/v1/event.proto\x1a\x17kinegate/v1/fault.proto\x1a\x16kinegate/v1/info.proto\x1a\x1ckinegate/v1/kinematics.proto\x1a\x1akinegate/v1/reaction.proto\x1a\x19kinegate/v1/verdict.proto\"\xde\x01\n" +
 	"\tSelection\x12\x12\n" +
 	"\x04name\x18\x01 \x01(\tR\x04name\x12 \n" +
 	"\vdescription\x18\x02 \x01(\tR\vdescription\x127\n" +
@@ -3697,20 +3624,15 @@ const file_kinegate_v1_selection_proto_rawDesc = "" +
 	"\x15CheckSelectionRequest\x126\n" +
 	"\tselection\x18\x01 \x01(\v2\x16.kinegate.v1.SelectionH\x00R\tselection\x12\x14\n" +
 	"\x04yaml\x18\x02 \x01(\tH\x00R\x04yamlB\x06\n" +
-	"\x04form\"\xa7\x02\n" +
-	"\x16CheckSelectionResponse\x123\n" +
-	"\x06faults\x18\x01 \x03(\v2\x1b.kinegate.v1.SelectionFaultR\x06faults\x124\n" +
+	"\x04form\"\xa3\x02\n" +
+	"\x16CheckSelectionResponse\x12/\n" +
+	"\x06faults\x18\x01 \x03(\v2\x17.kinegate.v1.FieldFaultR\x06faults\x124\n" +
 	"\tselection\x18\x02 \x01(\v2\x16.kinegate.v1.SelectionR\tselection\x12)\n" +
 	"\x10selection_digest\x18\x03 \x01(\tR\x0fselectionDigest\x12>\n" +
 	"\n" +
 	"hypotheses\x18\x04 \x03(\v2\x1e.kinegate.v1.HypothesisOutlineR\n" +
 	"hypotheses\x127\n" +
-	"\x18largest_reply_byte_count\x18\x05 \x01(\x03R\x15largestReplyByteCount\"l\n" +
-	"\x0eSelectionFault\x12\x14\n" +
-	"\x05field\x18\x01 \x01(\tR\x05field\x12\x18\n" +
-	"\amessage\x18\x02 \x01(\tR\amessage\x12\x12\n" +
-	"\x04line\x18\x03 \x01(\x05R\x04line\x12\x16\n" +
-	"\x06column\x18\x04 \x01(\x05R\x06column\"\x81\x01\n" +
+	"\x18largest_reply_byte_count\x18\x05 \x01(\x03R\x15largestReplyByteCount\"\x81\x01\n" +
 	"\x11HypothesisOutline\x12\x12\n" +
 	"\x04name\x18\x01 \x01(\tR\x04name\x12\x1a\n" +
 	"\breaction\x18\x02 \x01(\tR\breaction\x12\x1a\n" +
@@ -3805,7 +3727,7 @@ func file_kinegate_v1_selection_proto_rawDescGZIP() []byte {
 }
 
 var file_kinegate_v1_selection_proto_enumTypes = make([]protoimpl.EnumInfo, 4)
-var file_kinegate_v1_selection_proto_msgTypes = make([]protoimpl.MessageInfo, 42)
+var file_kinegate_v1_selection_proto_msgTypes = make([]protoimpl.MessageInfo, 41)
 var file_kinegate_v1_selection_proto_goTypes = []any{
 	(Role)(0),                        // 0: kinegate.v1.Role
 	(Measurement)(0),                 // 1: kinegate.v1.Measurement
@@ -3840,22 +3762,22 @@ var file_kinegate_v1_selection_proto_goTypes = []any{
 	(*MassReference)(nil),            // 30: kinegate.v1.MassReference
 	(*CheckSelectionRequest)(nil),    // 31: kinegate.v1.CheckSelectionRequest
 	(*CheckSelectionResponse)(nil),   // 32: kinegate.v1.CheckSelectionResponse
-	(*SelectionFault)(nil),           // 33: kinegate.v1.SelectionFault
-	(*HypothesisOutline)(nil),        // 34: kinegate.v1.HypothesisOutline
-	(*JudgeBlockRequest)(nil),        // 35: kinegate.v1.JudgeBlockRequest
-	(*JudgeBlockResponse)(nil),       // 36: kinegate.v1.JudgeBlockResponse
-	(*SelectionSource)(nil),          // 37: kinegate.v1.SelectionSource
-	(*SelectionReference)(nil),       // 38: kinegate.v1.SelectionReference
-	(*JudgeRequest)(nil),             // 39: kinegate.v1.JudgeRequest
-	(*JudgeResponse)(nil),            // 40: kinegate.v1.JudgeResponse
-	(*JudgeOpen)(nil),                // 41: kinegate.v1.JudgeOpen
-	(*JudgeOpened)(nil),              // 42: kinegate.v1.JudgeOpened
-	(*Credit)(nil),                   // 43: kinegate.v1.Credit
-	(*Heartbeat)(nil),                // 44: kinegate.v1.Heartbeat
-	(*Draining)(nil),                 // 45: kinegate.v1.Draining
-	(*Reaction)(nil),                 // 46: kinegate.v1.Reaction
-	(*InitialState)(nil),             // 47: kinegate.v1.InitialState
-	(InitialParticle)(0),             // 48: kinegate.v1.InitialParticle
+	(*HypothesisOutline)(nil),        // 33: kinegate.v1.HypothesisOutline
+	(*JudgeBlockRequest)(nil),        // 34: kinegate.v1.JudgeBlockRequest
+	(*JudgeBlockResponse)(nil),       // 35: kinegate.v1.JudgeBlockResponse
+	(*SelectionSource)(nil),          // 36: kinegate.v1.SelectionSource
+	(*SelectionReference)(nil),       // 37: kinegate.v1.SelectionReference
+	(*JudgeRequest)(nil),             // 38: kinegate.v1.JudgeRequest
+	(*JudgeResponse)(nil),            // 39: kinegate.v1.JudgeResponse
+	(*JudgeOpen)(nil),                // 40: kinegate.v1.JudgeOpen
+	(*JudgeOpened)(nil),              // 41: kinegate.v1.JudgeOpened
+	(*Credit)(nil),                   // 42: kinegate.v1.Credit
+	(*Heartbeat)(nil),                // 43: kinegate.v1.Heartbeat
+	(*Draining)(nil),                 // 44: kinegate.v1.Draining
+	(*Reaction)(nil),                 // 45: kinegate.v1.Reaction
+	(*InitialState)(nil),             // 46: kinegate.v1.InitialState
+	(InitialParticle)(0),             // 47: kinegate.v1.InitialParticle
+	(*FieldFault)(nil),               // 48: kinegate.v1.FieldFault
 	(*EventBlock)(nil),               // 49: kinegate.v1.EventBlock
 	(*VerdictBlock)(nil),             // 50: kinegate.v1.VerdictBlock
 	(*Limits)(nil),                   // 51: kinegate.v1.Limits
@@ -3863,7 +3785,7 @@ var file_kinegate_v1_selection_proto_goTypes = []any{
 var file_kinegate_v1_selection_proto_depIdxs = []int32{
 	5,  // 0: kinegate.v1.Selection.hypotheses:type_name -> kinegate.v1.Hypothesis
 	6,  // 1: kinegate.v1.Selection.groups:type_name -> kinegate.v1.Group
-	46, // 2: kinegate.v1.Hypothesis.structured_reaction:type_name -> kinegate.v1.Reaction
+	45, // 2: kinegate.v1.Hypothesis.structured_reaction:type_name -> kinegate.v1.Reaction
 	7,  // 3: kinegate.v1.Hypothesis.measurements:type_name -> kinegate.v1.ProductMeasurement
 	8,  // 4: kinegate.v1.Hypothesis.beam:type_name -> kinegate.v1.BeamSource
 	11, // 5: kinegate.v1.Hypothesis.extra_objects:type_name -> kinegate.v1.ExtraObjects
@@ -3873,7 +3795,7 @@ var file_kinegate_v1_selection_proto_depIdxs = []int32{
 	0,  // 9: kinegate.v1.Hypothesis.role:type_name -> kinegate.v1.Role
 	1,  // 10: kinegate.v1.ProductMeasurement.measurement:type_name -> kinegate.v1.Measurement
 	9,  // 11: kinegate.v1.BeamSource.tagged:type_name -> kinegate.v1.TaggedBeam
-	47, // 12: kinegate.v1.BeamSource.fixed:type_name -> kinegate.v1.InitialState
+	46, // 12: kinegate.v1.BeamSource.fixed:type_name -> kinegate.v1.InitialState
 	10, // 13: kinegate.v1.TaggedBeam.prompt:type_name -> kinegate.v1.TimeWindow
 	10, // 14: kinegate.v1.TaggedBeam.side_bands:type_name -> kinegate.v1.TimeWindow
 	12, // 15: kinegate.v1.ExtraObjects.none:type_name -> kinegate.v1.NoExtraObjects
@@ -3902,38 +3824,38 @@ var file_kinegate_v1_selection_proto_depIdxs = []int32{
 	2,  // 38: kinegate.v1.EnergyWindow.frame:type_name -> kinegate.v1.Frame
 	2,  // 39: kinegate.v1.AngleWindow.frame:type_name -> kinegate.v1.Frame
 	2,  // 40: kinegate.v1.OpeningAngleWindow.frame:type_name -> kinegate.v1.Frame
-	48, // 41: kinegate.v1.MomentumTransferWindow.initial:type_name -> kinegate.v1.InitialParticle
+	47, // 41: kinegate.v1.MomentumTransferWindow.initial:type_name -> kinegate.v1.InitialParticle
 	29, // 42: kinegate.v1.Ranking.closest_masses:type_name -> kinegate.v1.ClosestMasses
 	30, // 43: kinegate.v1.ClosestMasses.masses:type_name -> kinegate.v1.MassReference
 	4,  // 44: kinegate.v1.CheckSelectionRequest.selection:type_name -> kinegate.v1.Selection
-	33, // 45: kinegate.v1.CheckSelectionResponse.faults:type_name -> kinegate.v1.SelectionFault
+	48, // 45: kinegate.v1.CheckSelectionResponse.faults:type_name -> kinegate.v1.FieldFault
 	4,  // 46: kinegate.v1.CheckSelectionResponse.selection:type_name -> kinegate.v1.Selection
-	34, // 47: kinegate.v1.CheckSelectionResponse.hypotheses:type_name -> kinegate.v1.HypothesisOutline
-	37, // 48: kinegate.v1.JudgeBlockRequest.selection:type_name -> kinegate.v1.SelectionSource
+	33, // 47: kinegate.v1.CheckSelectionResponse.hypotheses:type_name -> kinegate.v1.HypothesisOutline
+	36, // 48: kinegate.v1.JudgeBlockRequest.selection:type_name -> kinegate.v1.SelectionSource
 	3,  // 49: kinegate.v1.JudgeBlockRequest.entries:type_name -> kinegate.v1.EntryDetail
 	49, // 50: kinegate.v1.JudgeBlockRequest.block:type_name -> kinegate.v1.EventBlock
 	50, // 51: kinegate.v1.JudgeBlockResponse.verdict:type_name -> kinegate.v1.VerdictBlock
 	4,  // 52: kinegate.v1.SelectionSource.inline:type_name -> kinegate.v1.Selection
-	38, // 53: kinegate.v1.SelectionSource.named:type_name -> kinegate.v1.SelectionReference
-	41, // 54: kinegate.v1.JudgeRequest.open:type_name -> kinegate.v1.JudgeOpen
+	37, // 53: kinegate.v1.SelectionSource.named:type_name -> kinegate.v1.SelectionReference
+	40, // 54: kinegate.v1.JudgeRequest.open:type_name -> kinegate.v1.JudgeOpen
 	49, // 55: kinegate.v1.JudgeRequest.block:type_name -> kinegate.v1.EventBlock
-	44, // 56: kinegate.v1.JudgeRequest.heartbeat:type_name -> kinegate.v1.Heartbeat
-	42, // 57: kinegate.v1.JudgeResponse.opened:type_name -> kinegate.v1.JudgeOpened
+	43, // 56: kinegate.v1.JudgeRequest.heartbeat:type_name -> kinegate.v1.Heartbeat
+	41, // 57: kinegate.v1.JudgeResponse.opened:type_name -> kinegate.v1.JudgeOpened
 	50, // 58: kinegate.v1.JudgeResponse.verdict:type_name -> kinegate.v1.VerdictBlock
-	44, // 59: kinegate.v1.JudgeResponse.heartbeat:type_name -> kinegate.v1.Heartbeat
-	45, // 60: kinegate.v1.JudgeResponse.draining:type_name -> kinegate.v1.Draining
-	37, // 61: kinegate.v1.JudgeOpen.selection:type_name -> kinegate.v1.SelectionSource
+	43, // 59: kinegate.v1.JudgeResponse.heartbeat:type_name -> kinegate.v1.Heartbeat
+	44, // 60: kinegate.v1.JudgeResponse.draining:type_name -> kinegate.v1.Draining
+	36, // 61: kinegate.v1.JudgeOpen.selection:type_name -> kinegate.v1.SelectionSource
 	3,  // 62: kinegate.v1.JudgeOpen.entries:type_name -> kinegate.v1.EntryDetail
 	51, // 63: kinegate.v1.JudgeOpen.limits:type_name -> kinegate.v1.Limits
-	43, // 64: kinegate.v1.JudgeOpened.credit:type_name -> kinegate.v1.Credit
+	42, // 64: kinegate.v1.JudgeOpened.credit:type_name -> kinegate.v1.Credit
 	51, // 65: kinegate.v1.JudgeOpened.limits:type_name -> kinegate.v1.Limits
-	34, // 66: kinegate.v1.JudgeOpened.hypotheses:type_name -> kinegate.v1.HypothesisOutline
+	33, // 66: kinegate.v1.JudgeOpened.hypotheses:type_name -> kinegate.v1.HypothesisOutline
 	31, // 67: kinegate.v1.SelectionService.CheckSelection:input_type -> kinegate.v1.CheckSelectionRequest
-	35, // 68: kinegate.v1.SelectionService.JudgeBlock:input_type -> kinegate.v1.JudgeBlockRequest
-	39, // 69: kinegate.v1.SelectionService.Judge:input_type -> kinegate.v1.JudgeRequest
+	34, // 68: kinegate.v1.SelectionService.JudgeBlock:input_type -> kinegate.v1.JudgeBlockRequest
+	38, // 69: kinegate.v1.SelectionService.Judge:input_type -> kinegate.v1.JudgeRequest
 	32, // 70: kinegate.v1.SelectionService.CheckSelection:output_type -> kinegate.v1.CheckSelectionResponse
-	36, // 71: kinegate.v1.SelectionService.JudgeBlock:output_type -> kinegate.v1.JudgeBlockResponse
-	40, // 72: kinegate.v1.SelectionService.Judge:output_type -> kinegate.v1.JudgeResponse
+	35, // 71: kinegate.v1.SelectionService.JudgeBlock:output_type -> kinegate.v1.JudgeBlockResponse
+	39, // 72: kinegate.v1.SelectionService.Judge:output_type -> kinegate.v1.JudgeResponse
 	70, // [70:73] is the sub-list for method output_type
 	67, // [67:70] is the sub-list for method input_type
 	67, // [67:67] is the sub-list for extension type_name
@@ -3947,6 +3869,7 @@ func file_kinegate_v1_selection_proto_init() {
 		return
 	}
 	file_kinegate_v1_event_proto_init()
+	file_kinegate_v1_fault_proto_init()
 	file_kinegate_v1_info_proto_init()
 	file_kinegate_v1_kinematics_proto_init()
 	file_kinegate_v1_reaction_proto_init()
@@ -3998,29 +3921,29 @@ func file_kinegate_v1_selection_proto_init() {
 		(*CheckSelectionRequest_Selection)(nil),
 		(*CheckSelectionRequest_Yaml)(nil),
 	}
-	file_kinegate_v1_selection_proto_msgTypes[33].OneofWrappers = []any{
+	file_kinegate_v1_selection_proto_msgTypes[32].OneofWrappers = []any{
 		(*SelectionSource_Inline)(nil),
 		(*SelectionSource_Named)(nil),
 	}
-	file_kinegate_v1_selection_proto_msgTypes[35].OneofWrappers = []any{
+	file_kinegate_v1_selection_proto_msgTypes[34].OneofWrappers = []any{
 		(*JudgeRequest_Open)(nil),
 		(*JudgeRequest_Block)(nil),
 		(*JudgeRequest_Heartbeat)(nil),
 	}
-	file_kinegate_v1_selection_proto_msgTypes[36].OneofWrappers = []any{
+	file_kinegate_v1_selection_proto_msgTypes[35].OneofWrappers = []any{
 		(*JudgeResponse_Opened)(nil),
 		(*JudgeResponse_Verdict)(nil),
 		(*JudgeResponse_Heartbeat)(nil),
 		(*JudgeResponse_Draining)(nil),
 	}
-	file_kinegate_v1_selection_proto_msgTypes[37].OneofWrappers = []any{}
+	file_kinegate_v1_selection_proto_msgTypes[36].OneofWrappers = []any{}
 	type x struct{}
 	out := protoimpl.TypeBuilder{
 		File: protoimpl.DescBuilder{
 			GoPackagePath: reflect.TypeOf(x{}).PkgPath(),
 			RawDescriptor: unsafe.Slice(unsafe.StringData(file_kinegate_v1_selection_proto_rawDesc), len(file_kinegate_v1_selection_proto_rawDesc)),
 			NumEnums:      4,
-			NumMessages:   42,
+			NumMessages:   41,
 			NumExtensions: 0,
 			NumServices:   1,
 		},

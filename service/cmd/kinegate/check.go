@@ -80,6 +80,6 @@ func (e *environment) describeCheck(name string, r *kinegatev1.CheckSelectionRes
 }
 
 // faultText is a fault in the form that editors jump to.
-func faultText(name string, f *kinegatev1.SelectionFault) string {
+func faultText(name string, f *kinegatev1.FieldFault) string {
 	return fmt.Sprintf("%s:%d:%d: %s: %s", name, f.GetLine(), f.GetColumn(), f.GetField(), f.GetMessage())
 }
