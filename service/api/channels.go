@@ -2,6 +2,7 @@ package api
 
 import (
 	"context"
+	"fmt"
 	"strconv"
 	"sync"
 
@@ -155,7 +156,7 @@ func (s *reactionService) searchBinding(request *kinegatev1.ListOpenChannelsRequ
 	rest.PageSize, rest.PageToken = 0, ""
 	wire, err := proto.MarshalOptions{Deterministic: true}.Marshal(rest)
 	if err != nil {
-		return pageArguments{}, err
+		return pageArguments{}, fmt.Errorf("request of a page: %w", err)
 	}
 	return pageBinding("ListOpenChannels", s.table.Digest(), string(wire)), nil
 }

@@ -60,6 +60,7 @@ func twoBodyCommand(p program) *cobra.Command {
 	variables := variableFlags()
 	values := make([]string, len(variables))
 	var product string
+	var picture drawing
 	c := &cobra.Command{
 		Use:   "two-body TEXT",
 		Short: "Say where both products of a two-body reaction go at given angles, energies or t",
@@ -78,6 +79,10 @@ func twoBodyCommand(p program) *cobra.Command {
 			}
 			var err error
 			if request.InitialState, err = initial.required(args[0]); err != nil {
+				return err
+			}
+			draw, err := picture.asked()
+			if err != nil {
 				return err
 			}
 			var chosen *variableFlag
@@ -113,6 +118,11 @@ func twoBodyCommand(p program) *cobra.Command {
 					return err
 				}
 			}
+			if draw {
+				if err := e.drawTwoBody(ctx, client, request, reply, &picture); err != nil {
+					return err
+				}
+			}
 			if len(reply.GetProducts()) == 0 || chosen != nil && branchCount(reply) == 0 {
 				return errNo
 			}
@@ -121,6 +131,7 @@ func twoBodyCommand(p program) *cobra.Command {
 	}
 	e.flags(c)
 	initial.add(c)
+	picture.flag(c)
 	c.Flags().StringVar(&product, "product", "", `product that the values belong to, such as Lambda or "p[1]"; the first if not given`)
 	for i, v := range variables {
 		c.Flags().StringVar(&values[i], v.name, "", v.usage)
@@ -209,9 +220,9 @@ func (e *environment) printSolutions(
 				transfer = b.GetUGev2()
 			}
 			p, q := b.GetProducts()[first], b.GetProducts()[second]
-			t.Row(value, degrees(p.GetCentreOfMassAngleRad()), shown(p.LaboratoryAngleRad, degrees),
-				shown(p.LaboratoryTotalEnergyGev, gevs), shown(p.LaboratoryMomentumGev, gevs), shown(p.CentreOfMassPerLaboratory, number),
-				shown(q.LaboratoryAngleRad, degrees), shown(q.LaboratoryMomentumGev, gevs), squareGev(transfer))
+			t.Row(value, degrees(p.GetCentreOfMassAngleRad()), shown(p.LaboratoryAngleRad != nil, p.GetLaboratoryAngleRad(), degrees),
+				shown(p.LaboratoryTotalEnergyGev != nil, p.GetLaboratoryTotalEnergyGev(), gevs), shown(p.LaboratoryMomentumGev != nil, p.GetLaboratoryMomentumGev(), gevs), shown(p.CentreOfMassPerLaboratory != nil, p.GetCentreOfMassPerLaboratory(), number),
+				shown(q.LaboratoryAngleRad != nil, q.GetLaboratoryAngleRad(), degrees), shown(q.LaboratoryMomentumGev != nil, q.GetLaboratoryMomentumGev(), gevs), squareGev(transfer))
 		}
 	}
 	if err := t.Write(e.out); err != nil {
@@ -222,9 +233,9 @@ func (e *environment) printSolutions(
 }
 
 // shown prints a number that may be absent.
-func shown(x *float64, form func(float64) string) string {
-	if x == nil {
+func shown(given bool, x float64, form func(float64) string) string {
+	if !given {
 		return "-"
 	}
-	return form(*x)
+	return form(x)
 }

@@ -3,6 +3,7 @@ package quantity
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 )
 
@@ -94,7 +95,7 @@ func inheritUnits(text string) string {
 	isWord := func(w string) bool { return w == "to" || w == "by" || w == "," }
 	unit := ""
 	var out []string
-	for i := len(words) - 1; i >= 0; i-- {
+	for i := range slices.Backward(words) {
 		switch {
 		case isWord(words[i]):
 		case isNumber(words[i]):
@@ -108,8 +109,6 @@ func inheritUnits(text string) string {
 		}
 		out = append(out, words[i])
 	}
-	for i, j := 0, len(out)-1; i < j; i, j = i+1, j-1 {
-		out[i], out[j] = out[j], out[i]
-	}
+	slices.Reverse(out)
 	return strings.ReplaceAll(strings.Join(strings.Fields(strings.Join(out, " ")), " "), " ,", ",")
 }
