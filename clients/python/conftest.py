@@ -1,0 +1,56 @@
+"""A server of its own for tests and documented examples."""
+
+from __future__ import annotations
+
+import os
+import sys
+from pathlib import Path
+from typing import TYPE_CHECKING, Any
+
+os.environ.setdefault("MPLBACKEND", "Agg")
+
+import pytest
+
+import kinegate
+
+if TYPE_CHECKING:
+    from collections.abc import Iterator
+
+HERE = Path(__file__).parent
+
+
+@pytest.fixture(scope="session")
+def server() -> Iterator[kinegate.LocalServer]:
+    """A running server."""
+    with kinegate.start_server() as running:
+        yield running
+
+
+@pytest.fixture(scope="session")
+def client(server: kinegate.LocalServer) -> Iterator[kinegate.Client]:
+    """A client of the server."""
+    with server.connect() as connected:
+        yield connected
+
+
+@pytest.fixture
+def testdata() -> Path:
+    """The folder of data that the project did not make, and of selections."""
+    return HERE.parent.parent / "testdata"
+
+
+@pytest.fixture(autouse=True)
+def examples(
+    request: pytest.FixtureRequest,
+    doctest_namespace: dict[str, Any],
+    monkeypatch: pytest.MonkeyPatch,
+) -> Iterator[None]:
+    """What documented examples take for granted: a client, and the package's own folder."""
+    if request.node.__class__.__name__ == "DoctestItem":
+        monkeypatch.chdir(HERE)
+        doctest_namespace["kinegate"] = kinegate
+        for name in ("server", "client"):
+            doctest_namespace[name] = request.getfixturevalue(name)
+    yield
+    if pyplot := sys.modules.get("matplotlib.pyplot"):
+        pyplot.close("all")

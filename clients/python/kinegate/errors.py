@@ -1,0 +1,206 @@
+"""What can go wrong, as exceptions that say which field and why.
+
+Every answer of a server that is no result becomes a :class:`ServerError` with the code of
+the call, the registered reason, the fields at fault and the values that matter:
+
+>>> try:
+...     client.reaction("gamma p -> K+ Lamda")
+... except kinegate.InvalidArgument as error:
+...     print(error.reason, error.field)
+FIELD_INVALID reaction
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+from typing import TYPE_CHECKING, Final
+
+import grpc
+from google.rpc import error_details_pb2, status_pb2
+
+if TYPE_CHECKING:
+    from collections.abc import Iterable, Mapping, Sequence
+
+__all__ = [
+    "BlockRejected",
+    "Cancelled",
+    "DeadlineExceeded",
+    "FailedPrecondition",
+    "FieldViolation",
+    "Internal",
+    "InvalidArgument",
+    "KinegateError",
+    "NotFound",
+    "PermissionDenied",
+    "ResourceExhausted",
+    "SelectionFaulty",
+    "ServerError",
+    "StreamBroken",
+    "Unauthenticated",
+    "Unavailable",
+    "Unimplemented",
+    "UsageError",
+]
+
+
+class KinegateError(Exception):
+    """The base of every exception of this package."""
+
+
+class UsageError(KinegateError):
+    """The package was used in a way that would hang or corrupt: forks and event loops."""
+
+
+class StreamBroken(KinegateError):
+    """A judge stream broke and could not be resumed, or its server broke the protocol."""
+
+
+@dataclass(frozen=True)
+class FieldViolation:
+    """One field of a request that is at fault."""
+
+    field: str
+    """Path of the field, such as "reaction"."""
+    description: str
+    """The value and what is allowed."""
+
+
+@dataclass(eq=False, repr=False)
+class ServerError(KinegateError):
+    """The answer of a server that is no result."""
+
+    message: str
+    """What is wrong, in words."""
+    code: str = "UNKNOWN"
+    """Name of the gRPC status code."""
+    reason: str = ""
+    """Registered reason, such as "LAW_BROKEN"; empty where no server answered."""
+    metadata: Mapping[str, str] = field(default_factory=dict)
+    """Values that matter, by name."""
+    violations: Sequence[FieldViolation] = ()
+    """The fields at fault."""
+    retryable: bool = False
+    """The same call may succeed later or on another replica, unchanged."""
+
+    def __post_init__(self) -> None:
+        super().__init__(self.message)
+
+    def __str__(self) -> str:
+        return self.message
+
+    def __reduce__(self) -> tuple[object, ...]:
+        state = (self.message, self.code, self.reason, dict(self.metadata))
+        return type(self), (*state, tuple(self.violations), self.retryable)
+
+    @property
+    def field(self) -> str:
+        """Path of the first field at fault; empty where there is none."""
+        return self.violations[0].field if self.violations else ""
+
+
+class InvalidArgument(ServerError):
+    """A field is malformed or out of range, a name unknown, a conservation law broken."""
+
+
+class NotFound(ServerError):
+    """What was asked for by name is not known."""
+
+
+class FailedPrecondition(ServerError):
+    """The state does not allow the call: a channel closed, a digest gone, a protocol fault."""
+
+
+class ResourceExhausted(ServerError):
+    """A message over its limit, work over its budget, a caller over its quota."""
+
+
+class Unavailable(ServerError):
+    """No server, or one that is overloaded or about to leave."""
+
+
+class DeadlineExceeded(ServerError):
+    """The answer did not come in time; maybe no server is there at all."""
+
+
+class Cancelled(ServerError):
+    """The call was given up."""
+
+
+class PermissionDenied(ServerError):
+    """The caller's identity may not call the method."""
+
+
+class Unauthenticated(ServerError):
+    """The server asks for a certificate that the caller did not show."""
+
+
+class Unimplemented(ServerError):
+    """The server does not know the method; it may be older than this client."""
+
+
+class Internal(ServerError):
+    """A fault of the server; the message carries the reference number of its log."""
+
+
+class BlockRejected(InvalidArgument):
+    """A block of events is structurally unsound; the stream goes on after it."""
+
+
+class SelectionFaulty(InvalidArgument):
+    """A selection has faults; `violations` holds all of them."""
+
+
+_KINDS: Final[Mapping[grpc.StatusCode, type[ServerError]]] = {
+    grpc.StatusCode.INVALID_ARGUMENT: InvalidArgument,
+    grpc.StatusCode.NOT_FOUND: NotFound,
+    grpc.StatusCode.FAILED_PRECONDITION: FailedPrecondition,
+    grpc.StatusCode.RESOURCE_EXHAUSTED: ResourceExhausted,
+    grpc.StatusCode.UNAVAILABLE: Unavailable,
+    grpc.StatusCode.DEADLINE_EXCEEDED: DeadlineExceeded,
+    grpc.StatusCode.CANCELLED: Cancelled,
+    grpc.StatusCode.PERMISSION_DENIED: PermissionDenied,
+    grpc.StatusCode.UNAUTHENTICATED: Unauthenticated,
+    grpc.StatusCode.UNIMPLEMENTED: Unimplemented,
+    grpc.StatusCode.INTERNAL: Internal,
+}
+
+
+def from_rpc(error: grpc.RpcError, address: str) -> ServerError:
+    """Turn the failure of a call to a server into an exception of this package."""
+    call: grpc.Call = error  # type: ignore[assignment]  # every RpcError of a call is a Call
+    code = call.code()
+    reason, metadata, violations = _details(call.trailing_metadata())
+    message = call.details() or code.name
+    if not reason and code in (grpc.StatusCode.DEADLINE_EXCEEDED, grpc.StatusCode.UNAVAILABLE):
+        message = f"no answer from a server at {address} ({message}); does it run there?"
+    return _KINDS.get(code, ServerError)(
+        message,
+        code=code.name,
+        reason=reason,
+        metadata=metadata,
+        violations=violations,
+        retryable=code is grpc.StatusCode.UNAVAILABLE,
+    )
+
+
+def _details(
+    trailers: Iterable[tuple[str, str | bytes]],
+) -> tuple[str, dict[str, str], tuple[FieldViolation, ...]]:
+    """Read reason, metadata and fields from the details that travel in the trailers."""
+    for key, value in trailers:
+        if key == "grpc-status-details-bin" and isinstance(value, bytes):
+            break
+    else:
+        return "", {}, ()
+    reason, metadata = "", {}
+    violations: tuple[FieldViolation, ...] = ()
+    for detail in status_pb2.Status.FromString(value).details:
+        info = error_details_pb2.ErrorInfo()
+        request = error_details_pb2.BadRequest()
+        if detail.Unpack(info):
+            reason, metadata = info.reason, dict(info.metadata)
+        elif detail.Unpack(request):
+            violations = tuple(
+                FieldViolation(v.field, v.description) for v in request.field_violations
+            )
+    return reason, metadata, violations

@@ -1,0 +1,361 @@
+"""Measured events as numpy columns.
+
+Objects follow one another, event after event; `offsets` says where each event begins.
+A sample may be of any size; the client cuts it into blocks of the contract's size.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field, fields, replace
+from typing import TYPE_CHECKING, Any, Final, Self
+
+import numpy as np
+
+from kinegate import columns, csvfile, frames
+from kinegate.parts import (
+    BeamCandidates,
+    ClusterPositions,
+    Part,
+    Polarisation,
+    VertexGroups,
+    Vertices,
+    cut_offsets,
+    join_offsets,
+)
+from kinegate.v1 import event_pb2
+
+if TYPE_CHECKING:
+    from collections.abc import Iterator, Mapping, Sequence
+    from os import PathLike
+
+    from numpy.typing import ArrayLike, NDArray
+
+__all__ = ["COORDINATES", "NEGATIVE", "NEUTRAL", "PHOTON", "POSITIVE", "Events"]
+
+PHOTON: Final = int(event_pb2.OBJECT_CLASS_PHOTON)
+"""Class of a photon: a calorimeter cluster without a track."""
+POSITIVE: Final = int(event_pb2.OBJECT_CLASS_POSITIVE)
+"""Class of a track of positive charge."""
+NEGATIVE: Final = int(event_pb2.OBJECT_CLASS_NEGATIVE)
+"""Class of a track of negative charge."""
+NEUTRAL: Final = int(event_pb2.OBJECT_CLASS_NEUTRAL)
+"""Class of a neutral object that is no photon."""
+
+COORDINATES: Final[Mapping[str, tuple[str, ...]]] = {
+    "energy_momentum": ("energy_gev", "px_gev", "py_gev", "pz_gev"),
+    "momentum_mass": ("px_gev", "py_gev", "pz_gev", "mass_gev"),
+    "transverse_momentum": ("transverse_momentum_gev", "pseudorapidity", "phi_rad", "mass_gev"),
+    "momentum_angles": ("momentum_gev", "theta_rad", "phi_rad"),
+    "momentum_slopes": ("momentum_gev", "slope_x", "slope_y"),
+}
+"""The coordinate sets with their columns, such as momentum_mass: px_gev, py_gev, ..."""
+
+_MASKS: Final = ("measured_mask", "species_mask")
+_PARTS: Final[Mapping[str, type[Part]]] = {
+    "beam": BeamCandidates,
+    "vertex": Vertices,
+    "vertex_group": VertexGroups,
+    "cluster_position": ClusterPositions,
+    "polarisation": Polarisation,
+}
+
+
+@dataclass(frozen=True, eq=False)
+class Events:
+    """Events in columns; :meth:`of` is the convenient way to make them.
+
+    A slice of events is again events and shares their columns.
+    """
+
+    coordinates: str
+    """Name of the coordinate set, a key of :data:`COORDINATES`."""
+    values: dict[str, NDArray[np.float64]]
+    """Columns of the coordinate set by name, each of shape (objects,)."""
+    offsets: NDArray[np.int32]
+    """First object of each event and the total at the end, shape (events + 1,)."""
+    classes: NDArray[np.uint8]
+    """Class of each object, shape (objects,)."""
+    ids: NDArray[np.int64]
+    """Event ids, shape (events,)."""
+    run_number: int = 0
+    """Run number."""
+    measured_mask: NDArray[np.uint8] | None = None
+    """Bit k is set where parameter k was measured, shape (objects,); None for all."""
+    species_mask: NDArray[np.uint8] | None = None
+    """Bit 0 e, 1 mu, 2 pi, 3 K, 4 p, 5 d, shape (objects,); 0 and None are any."""
+    covariance: NDArray[np.float64] | None = None
+    """Upper triangles of the parameters' covariances, shape (objects, 6)."""
+    beam: BeamCandidates | None = None
+    """Tagged beam candidates; None where there are none."""
+    vertex: Vertices | None = None
+    """Event vertices; None where not measured."""
+    vertex_group: VertexGroups | None = None
+    """Vertices of displaced decays; None where every object is from the event vertex."""
+    cluster_position: ClusterPositions | None = None
+    """Calorimeter clusters; None where not known."""
+    polarisation: Polarisation | None = None
+    """Polarisation of the beam; None for none."""
+    extra: dict[str, NDArray[Any]] = field(default_factory=dict)
+    """Columns of shape (events,) that travel along and are never sent."""
+
+    @classmethod
+    def of(
+        cls,
+        *,
+        classes: ArrayLike,
+        offsets: ArrayLike | None = None,
+        ids: ArrayLike | None = None,
+        **others: Any,
+    ) -> Self:
+        """Make events from columns named as in :data:`COORDINATES`.
+
+        Args:
+            classes: Class of each object, of the shape of the columns, or of the shape of
+                one event where all events are alike.
+            offsets: Shape (events + 1,); not needed for columns of shape (events, n),
+                which stand for n objects in every event.
+            ids: Event ids; 0, 1, ... by default.
+            others: The columns of one coordinate set, and members of this class.
+
+        >>> events = Events.of(momentum_gev=[[0.5, 0.7], [0.4, 0.8]],
+        ...                    theta_rad=[[0.3, 1.2], [0.7, 0.9]],
+        ...                    phi_rad=[[0.1, 3.0], [0.2, -2.8]],
+        ...                    classes=[PHOTON, PHOTON])
+        >>> len(events), events.coordinates, events["theta_rad"][events.offsets[1]:]
+        (2, 'momentum_angles', array([0.7, 0.9]))
+        """
+        members = {f.name for f in fields(cls)}
+        given = {k: np.asarray(v, np.float64) for k, v in others.items() if k not in members}
+        chosen = next((n for n, names in COORDINATES.items() if set(names) == set(given)), None)
+        if chosen is None:
+            known = "; ".join(f"{n}: {', '.join(names)}" for n, names in COORDINATES.items())
+            raise ValueError(f"columns {', '.join(given)} are no coordinate set; known: {known}")
+        shape = next(iter(given.values())).shape
+        starts = _offsets(offsets, shape)
+        kinds = np.broadcast_to(np.asarray(classes, np.uint8), shape).ravel()
+        events = cls(
+            chosen,
+            {name: given[name].ravel() for name in COORDINATES[chosen]},
+            starts,
+            kinds,
+            np.arange(len(starts) - 1) if ids is None else np.asarray(ids, np.int64),
+            **{k: v for k, v in others.items() if k in members},
+        )
+        events.check()
+        return events
+
+    def check(self) -> None:
+        """Raise ValueError where the length of a column does not match."""
+        events, objects = len(self), len(self.classes)
+        if len(self.offsets) == 0 or self.offsets[0] != 0 or np.any(np.diff(self.offsets) < 0):
+            raise ValueError("offsets must begin with 0 and never fall")
+        if self.offsets[-1] != objects:
+            raise ValueError(f"offsets end at {self.offsets[-1]}, but there are {objects} objects")
+        rows = dict.fromkeys((*self.values, *_MASKS, "covariance"), objects)
+        rows |= {"ids": events, **dict.fromkeys(self.extra, events)}
+        for name, needed in rows.items():
+            column = self._column(name)
+            if column is not None and len(column) != needed:
+                raise ValueError(f"{name}: {len(column)} rows, {needed} are needed")
+        for name in _PARTS:
+            if (part := getattr(self, name)) is not None:
+                part.check(name, events, objects)
+
+    def _column(self, name: str) -> NDArray[Any] | None:
+        for owner in (self.values, self.extra):
+            if name in owner:
+                return owner[name]
+        column: NDArray[Any] | None = getattr(self, name)
+        return column
+
+    @classmethod
+    def read_csv(cls, path: str | PathLike[str]) -> Self:
+        """Read events of a fixed number of tracks from a file of measured leptons.
+
+        The first line names the columns: px1, py1, pz1, Q1, PID1 and so on for each track;
+        Run and Event; anything else travels along in `extra`. The mass of each lepton
+        follows from its PID; without, the tracks are muons.
+
+        >>> Events.read_csv("../../testdata/open/dimuon_2011A.csv").extra["M"][:2]
+        array([89.9557, 88.6081])
+        """
+        return cls.of(**csvfile.read(path))
+
+    def __len__(self) -> int:
+        return len(self.offsets) - 1
+
+    def __getitem__(self, name: str) -> NDArray[np.float64]:
+        return self.values[name]
+
+    def __iter__(self) -> Iterator[Any]:
+        raise TypeError("iterate over events.blocks(), or over columns")
+
+    def __repr__(self) -> str:
+        parts = [n for n in (*_MASKS, "covariance", *_PARTS) if getattr(self, n) is not None]
+        carries = f", with {', '.join(parts)}" if parts else ""
+        return f"<{len(self)} events, {len(self.classes)} objects in {self.coordinates}{carries}>"
+
+    def cut(self, start: int, stop: int) -> Self:
+        """Return the events from start up to, not including, stop; columns are shared.
+
+        >>> Events.read_csv("../../testdata/open/dimuon_2011A.csv").cut(5, 8)
+        <3 events, 6 objects in momentum_mass, with species_mask>
+        """
+        start, stop, _ = slice(start, stop).indices(len(self))
+        events = slice(start, max(start, stop))
+        offsets, objects = cut_offsets(self.offsets, events)
+        cut: dict[str, Any] = {}
+        for name in (*_MASKS, "covariance"):
+            column = getattr(self, name)
+            cut[name] = None if column is None else column[objects]
+        for name in _PARTS:
+            part = getattr(self, name)
+            cut[name] = None if part is None else part.cut(events, objects)
+        return replace(
+            self,
+            values={name: column[objects] for name, column in self.values.items()},
+            offsets=offsets,
+            classes=self.classes[objects],
+            ids=self.ids[events],
+            extra={name: column[events] for name, column in self.extra.items()},
+            **cut,
+        )
+
+    def blocks(self, events_per_block: int = 1000) -> Iterator[Self]:
+        """Cut the sample into blocks that share its columns.
+
+        >>> sample = Events.read_csv("../../testdata/open/dimuon_2011A.csv")
+        >>> [len(block) for block in sample.blocks(1300)]
+        [1300, 1300, 400]
+        """
+        if events_per_block < 1:
+            raise ValueError(f"events_per_block: {events_per_block} is not above 0")
+        for start in range(0, len(self), events_per_block):
+            yield self.cut(start, start + events_per_block)
+
+    def to_message(self, sequence: int = 0) -> event_pb2.EventBlock:
+        """Make the message of one block.
+
+        >>> sample = Events.read_csv("../../testdata/open/dimuon_2011A.csv").cut(0, 10)
+        >>> back = Events.from_message(sample.to_message())
+        >>> bool((back["px_gev"] == sample["px_gev"]).all())
+        True
+        """
+        block = event_pb2.EventBlock(
+            sequence=sequence,
+            event_ids=columns.encode(self.ids, np.int64),
+            run_number=self.run_number,
+            object_offsets=columns.encode(self.offsets, np.int32),
+            object_classes=columns.encode(self.classes, np.uint8),
+        )
+        coordinates = getattr(block, self.coordinates)
+        coordinates.SetInParent()
+        for name, column in self.values.items():
+            setattr(coordinates, name, columns.encode(column, np.float64))
+        for name in _MASKS:
+            if (mask := getattr(self, name)) is not None:
+                getattr(block, name).SetInParent()
+                getattr(block, name).masks = columns.encode(mask, np.uint8)
+        if self.covariance is not None:
+            block.covariance.SetInParent()
+            block.covariance.elements = columns.encode(self.covariance, np.float64)
+        for name in _PARTS:
+            if (part := getattr(self, name)) is not None:
+                part.write(getattr(block, name))
+        return block
+
+    @classmethod
+    def from_message(cls, block: event_pb2.EventBlock) -> Self:
+        """View the columns of a message; arrays are read-only.
+
+        The bytes that protobuf hands out are viewed, not copied again.
+        """
+        chosen = block.WhichOneof("coordinates")
+        if chosen is None:
+            raise ValueError("the block has no coordinates")
+        coordinates = getattr(block, chosen)
+        present = {f.name: value for f, value in block.ListFields()}
+        optional: dict[str, Any] = {
+            name: columns.view(present[name].masks, np.uint8) for name in _MASKS if name in present
+        }
+        optional |= {name: _PARTS[name].read(present[name]) for name in _PARTS if name in present}
+        if "covariance" in present:
+            elements = columns.view(block.covariance.elements, np.float64)
+            optional["covariance"] = elements.reshape(-1, 6)
+        events = cls(
+            chosen,
+            {n: columns.view(getattr(coordinates, n), np.float64) for n in COORDINATES[chosen]},
+            columns.view(block.object_offsets, np.int32),
+            columns.view(block.object_classes, np.uint8),
+            columns.view(block.event_ids, np.int64),
+            block.run_number,
+            **optional,
+        )
+        events.check()
+        return events
+
+    @classmethod
+    def concatenate(cls, samples: Sequence[Events]) -> Self:
+        """Join samples of the same coordinate set into one.
+
+        >>> sample = Events.read_csv("../../testdata/open/dimuon_2011A.csv")
+        >>> len(Events.concatenate(list(sample.blocks(700))))
+        3000
+        """
+        if len({s.coordinates for s in samples}) != 1:
+            raise ValueError("samples to join must be there, and in one coordinate set")
+        first = samples[0]
+        optional: dict[str, Any] = {}
+        for name in (*_MASKS, "covariance", *_PARTS):
+            found = [getattr(s, name) for s in samples]
+            if all(f is not None for f in found):
+                join = _PARTS[name].join if name in _PARTS else np.concatenate
+                optional[name] = join(found)
+            elif any(f is not None for f in found):
+                raise ValueError(f"{name} is present in some samples only")
+        return cls(
+            first.coordinates,
+            {n: np.concatenate([s.values[n] for s in samples]) for n in first.values},
+            join_offsets([s.offsets for s in samples]),
+            np.concatenate([s.classes for s in samples]),
+            np.concatenate([s.ids for s in samples]),
+            first.run_number,
+            extra={n: np.concatenate([s.extra[n] for s in samples]) for n in first.extra},
+            **optional,
+        )
+
+    def to_pandas(self) -> Any:
+        """Return a pandas DataFrame of the objects, indexed by event id and object.
+
+        >>> Events.read_csv("../../testdata/open/dimuon_2011A.csv").to_pandas().shape
+        (6000, 5)
+        """
+        return frames.events_to_pandas(self)
+
+    def to_arrow(self) -> Any:
+        """Return an Arrow table of one row an event, with lists of its objects inside.
+
+        The lists view the columns without a copy. Masks, covariances, beam candidates and
+        `extra` go along; vertices, clusters and polarisation do not.
+
+        >>> sample = Events.read_csv("../../testdata/open/dimuon_2011A.csv")
+        >>> len(Events.from_arrow(sample.to_arrow()))
+        3000
+        """
+        return frames.events_to_arrow(self)
+
+    @classmethod
+    def from_arrow(cls, table: Any) -> Self:
+        """Make events from an Arrow table as :meth:`to_arrow` makes it."""
+        arguments = frames.events_from_arrow(table, COORDINATES)
+        if (beam := arguments.pop("beam", None)) is not None:
+            arguments["beam"] = BeamCandidates(**beam)
+        return cls.of(**arguments)
+
+
+def _offsets(given: ArrayLike | None, shape: tuple[int, ...]) -> NDArray[np.int32]:
+    if given is not None:
+        return np.asarray(given, np.int32)
+    if len(shape) != 2:  # noqa: PLR2004  # (events, objects of each)
+        raise ValueError("columns of shape (objects,) need offsets; of shape (events, n) none")
+    return np.arange(shape[0] + 1, dtype=np.int32) * np.int32(shape[1])

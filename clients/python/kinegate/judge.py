@@ -1,0 +1,276 @@
+"""The rules of the judge stream, without any input or output.
+
+:class:`Protocol` is told what happens and says what to send; the synchronous and the
+asyncio stream both drive it. It holds every block until its verdict is there, so that a
+broken stream goes on where it ended: a new stream opens with the first sequence not yet
+answered and the same digest, and the verdict is the acknowledgement.
+"""
+
+from __future__ import annotations
+
+from collections import deque
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, Final
+
+import grpc
+
+from kinegate.errors import ServerError, StreamBroken
+from kinegate.selection import Hypothesis, Selection, entry_detail, outline
+from kinegate.v1 import selection_pb2
+from kinegate.verdicts import Verdicts
+
+if TYPE_CHECKING:
+    from collections.abc import Iterable, Iterator
+
+    from kinegate.events import Events
+    from kinegate.v1 import event_pb2, verdict_pb2
+
+__all__ = ["Protocol", "Settings"]
+
+HEARTBEAT: Final = 1.0
+"""Silence in second after which a side says that it is alive."""
+DEAD: Final = 3.0
+"""Silence in second after which the other side counts as gone."""
+STUCK: Final = 30.0
+"""Age in second of the oldest unanswered block at which a server counts as stuck."""
+AHEAD: Final = 2
+"""Blocks that are prepared beyond the credit, so that the stream never waits for them."""
+LATE: Final = ("accept", "reject")
+
+
+@dataclass(frozen=True)
+class Settings:
+    """What the caller chose; `Client.judge` describes each."""
+
+    selection: Selection
+    entries: str = "accepted"
+    events_per_block: int = 1000
+    latency_budget: float | None = None
+    late: str = "accept"
+    follow: bool = False
+    first_sequence: int = 0
+    patience: float = 60.0
+    progress: bool = False
+
+    def __post_init__(self) -> None:
+        entry_detail(self.entries)
+        if self.late not in LATE:
+            raise ValueError(f"late: {self.late!r} is none of {', '.join(map(repr, LATE))}")
+        if not 1 <= self.events_per_block <= 4096:  # noqa: PLR2004  # the contract's limit
+            raise ValueError(f"events_per_block: {self.events_per_block} is not within [1, 4096]")
+        if self.latency_budget is not None and not self.latency_budget > 0:
+            raise ValueError(f"latency_budget: {self.latency_budget} is not above 0")
+        if self.first_sequence < 0:
+            raise ValueError(f"first_sequence: {self.first_sequence} is below 0")
+
+    def blocks(self, events: Events | Iterable[Events]) -> Iterator[Events]:
+        """Cut a sample into blocks; blocks of an iterable stay as they are unless too large."""
+        from kinegate.events import Events  # noqa: PLC0415  # verdicts and events stay apart
+
+        for part in [events] if isinstance(events, Events) else events:
+            yield from part.blocks(self.events_per_block)
+
+
+@dataclass
+class _Waiting:
+    """A block without a verdict."""
+
+    events: Events
+    message: event_pb2.EventBlock
+    size: int
+
+
+class Protocol:
+    """The state of one judge stream over all its connections."""
+
+    def __init__(self, settings: Settings) -> None:
+        self.settings = settings
+        self.digest = settings.selection.digest
+        self.hypotheses: list[Hypothesis] = list(settings.selection.hypotheses.values())
+        self.reconnects = 0
+        """Streams opened after the first."""
+        self.late_count = 0
+        """Events that were marked EXPIRED."""
+        self.draining = False
+        """The server said that it will leave."""
+        self._waiting: deque[_Waiting] = deque()
+        self._next = settings.first_sequence
+        self._sent = 0  # of those waiting, on this connection
+        self._sent_bytes = 0
+        self._credit: selection_pb2.Credit | None = None
+        self._finished = False
+        self._last_sent = self._last_received = self._progress = 0.0
+        self._oldest_pending = 0.0
+
+    @property
+    def waiting_count(self) -> int:
+        """Blocks added and not answered."""
+        return len(self._waiting)
+
+    @property
+    def window(self) -> int:
+        """Blocks that may be on their way or taken by nobody yet."""
+        return AHEAD + (self._credit.block_count if self._credit else 1)
+
+    @property
+    def done(self) -> bool:
+        """Every block was answered and no more will come."""
+        return self._finished and not self._waiting
+
+    def add(self, events: Events) -> None:
+        """Take the next block."""
+        message = events.to_message(self._next)
+        self._next += 1
+        self._waiting.append(_Waiting(events, message, message.ByteSize()))
+
+    def finish(self) -> None:
+        """Say that no more blocks will come."""
+        self._finished = True
+
+    def connect(self, now: float) -> selection_pb2.JudgeRequest:
+        """Begin on a new connection; returns its first frame."""
+        self._sent = self._sent_bytes = 0
+        self._credit = None
+        self.draining = False
+        self._oldest_pending = 0.0
+        self._last_sent = self._last_received = now
+        if self._progress == 0:
+            self._progress = now
+        settings = self.settings
+        source = settings.selection.source
+        if source.HasField("named") and self.digest and not settings.follow:
+            # A stream that goes on must be judged by the very selection that it began with.
+            source = selection_pb2.SelectionSource()
+            source.named.name = settings.selection.source.named.name
+            source.named.selection_digest = self.digest
+        opening = selection_pb2.JudgeOpen(
+            selection=source,
+            first_sequence=self._next - len(self._waiting),
+            entries=entry_detail(settings.entries),
+            latency_budget_s=settings.latency_budget,
+            follow=settings.follow,
+        )
+        return selection_pb2.JudgeRequest(open=opening)
+
+    def outgoing(self, now: float) -> selection_pb2.JudgeRequest | None:
+        """Return the next frame to send, if any: a block with credit, or a heartbeat."""
+        if self._credit is None:
+            return None
+        if self._sent < len(self._waiting) and not self.draining:
+            block = self._waiting[self._sent]
+            used = self._sent_bytes + block.size
+            fits = self._sent < self._credit.block_count and used <= self._credit.byte_count
+            # A single block beyond the byte credit is the server's to refuse.
+            if fits or self._sent == 0:
+                self._sent += 1
+                self._sent_bytes = used
+                self._last_sent = now
+                return selection_pb2.JudgeRequest(block=block.message)
+        if now - self._last_sent >= HEARTBEAT:
+            self._last_sent = now
+            known = self._next - len(self._waiting) - 1
+            beat = selection_pb2.Heartbeat(received_sequence=known, answered_sequence=known)
+            return selection_pb2.JudgeRequest(heartbeat=beat)
+        return None
+
+    @property
+    def half_close(self) -> bool:
+        """Nothing more will be sent on this connection."""
+        return self._finished and self._credit is not None and self._sent == len(self._waiting)
+
+    def until_heartbeat(self, now: float) -> float:
+        """Return the time in second until a heartbeat is due."""
+        return max(0.0, self._last_sent + HEARTBEAT - now)
+
+    def incoming(
+        self, response: selection_pb2.JudgeResponse, now: float
+    ) -> tuple[Events, verdict_pb2.VerdictBlock] | None:
+        """Take a frame of the server; returns a block with its verdict, if it is one."""
+        self._last_received = now
+        kind = response.WhichOneof("frame")
+        if kind == "opened":
+            self._opened(response.opened)
+            self._progress = now
+        elif kind == "draining":
+            self.draining = True
+        elif kind == "heartbeat":
+            self._oldest_pending = response.heartbeat.oldest_pending_s
+        elif kind == "verdict":
+            self._progress = now
+            return self._answered(response.verdict)
+        return None
+
+    def _opened(self, opened: selection_pb2.JudgeOpened) -> None:
+        if self._credit is not None:
+            raise StreamBroken("the server opened the stream twice")
+        if self.digest and opened.selection_digest != self.digest and not self.settings.follow:
+            raise StreamBroken(
+                f"the server judges with digest {opened.selection_digest}, not {self.digest}: "
+                "its particle table or numerics differ from those that the stream began with"
+            )
+        self.digest = opened.selection_digest
+        self.hypotheses = list(outline(opened.hypotheses).values())
+        self._credit = opened.credit
+
+    def _answered(
+        self, verdict: verdict_pb2.VerdictBlock
+    ) -> tuple[Events, verdict_pb2.VerdictBlock]:
+        expected = self._next - len(self._waiting)
+        if self._sent == 0 or verdict.sequence != expected:
+            raise StreamBroken(f"verdict {verdict.sequence} came where {expected} was due")
+        block = self._waiting.popleft()
+        self._sent -= 1
+        self._sent_bytes -= block.size
+        self._oldest_pending = 0.0
+        return block.events, verdict
+
+    def read(self, events: Events, verdict: verdict_pb2.VerdictBlock) -> Verdicts:
+        """Read a verdict by the caller's policy for late events, and count these."""
+        verdicts = Verdicts.from_message(
+            verdict,
+            self.hypotheses,
+            self.settings.selection.groups,
+            events.ids,
+            accept_late=self.settings.late == "accept",
+        )
+        self.late_count += int(verdicts.late.sum())
+        return verdicts
+
+    def dead(self, now: float) -> bool:
+        """Tell whether the connection must be given up: silent, or stuck on a block."""
+        return now - self._last_received > DEAD or self._oldest_pending > STUCK
+
+    def fail_if_hopeless(self, error: ServerError | None, address: str, now: float) -> None:
+        """Raise where another try would not help, or none has helped for too long."""
+        if error is not None and is_final(error):
+            raise error
+        if not self.done and now - self._progress > self.settings.patience:
+            why = error or "the stream ended"
+            raise StreamBroken(
+                f"no verdict from {address} for {self.settings.patience:g} s: {why}"
+            ) from error
+
+
+# What ends a stream for good: asking again would get the same answer. UNKNOWN, INTERNAL and
+# CANCELLED without a reason come from the transport and are worth another try.
+_FINAL: Final = (
+    grpc.StatusCode.INVALID_ARGUMENT,
+    grpc.StatusCode.NOT_FOUND,
+    grpc.StatusCode.FAILED_PRECONDITION,
+    grpc.StatusCode.RESOURCE_EXHAUSTED,
+    grpc.StatusCode.PERMISSION_DENIED,
+    grpc.StatusCode.UNAUTHENTICATED,
+    grpc.StatusCode.UNIMPLEMENTED,
+)
+
+
+def is_final(error: ServerError) -> bool:
+    """Tell whether the failure of a stream would come again on the next."""
+    if error.code in {code.name for code in _FINAL}:
+        return True
+    return error.code == "INTERNAL" and error.reason != ""
+
+
+def pause(failures: int) -> float:
+    """Return the pause in second before the next try after some failures in a row."""
+    return float(min(0.1 * 2 ** min(failures, 5), 2.0)) if failures else 0.0

@@ -1,0 +1,174 @@
+"""A server on this machine for as long as it is needed."""
+
+from __future__ import annotations
+
+import atexit
+import collections
+import json
+import os
+import re
+import shutil
+import subprocess
+import threading
+import time
+from typing import TYPE_CHECKING, Final, Self
+
+from kinegate.client import Client, connect
+from kinegate.errors import UsageError
+
+if TYPE_CHECKING:
+    from collections.abc import Sequence
+    from os import PathLike
+    from types import TracebackType
+
+__all__ = ["LocalServer", "find_program", "start_server"]
+
+_LISTENING: Final = re.compile(r"listening for (\w+) at (\S+)")
+_KEPT_LINES: Final = 200
+
+
+class LocalServer:
+    """A running `kinegate serve` that belongs to this process; it ends with it."""
+
+    def __init__(self, command: Sequence[str], wait: float) -> None:
+        self.process = subprocess.Popen(  # noqa: S603  # the program that the caller named
+            command,
+            stdin=subprocess.DEVNULL,
+            stdout=subprocess.PIPE,
+            stderr=subprocess.STDOUT,
+            text=True,
+        )
+        """The process."""
+        self._log: collections.deque[str] = collections.deque(maxlen=_KEPT_LINES)
+        self._addresses: dict[str, str] = {}
+        self._changed = threading.Condition()
+        self._reader = threading.Thread(target=self._read, daemon=True, name="kinegate-log")
+        self._reader.start()
+        atexit.register(self.stop)
+        deadline = time.monotonic() + wait
+        with self._changed:
+            while not {"general", "gate"} <= self._addresses.keys():
+                left = deadline - time.monotonic()
+                if self.process.poll() is not None or left <= 0:
+                    break
+                self._changed.wait(min(left, 0.1))
+        if not {"general", "gate"} <= self._addresses.keys():
+            self.stop()
+            self._reader.join(1)
+            tail = "\n".join(list(self._log)[-5:])
+            raise UsageError(f"the server did not start: {' '.join(command)}\n{tail}")
+
+    @property
+    def address(self) -> str:
+        """Address for calls."""
+        return self._addresses["general"]
+
+    @property
+    def gate_address(self) -> str:
+        """Address for judge streams."""
+        return self._addresses["gate"]
+
+    @property
+    def log(self) -> list[str]:
+        """The last lines of the server's log."""
+        return list(self._log)
+
+    def connect(self, timeout: float = 10.0) -> Client:
+        """Connect to this server."""
+        return connect(self.address, gate_address=self.gate_address, timeout=timeout)
+
+    def stop(self) -> None:
+        """Stop the server: it drains for a moment, then it is killed."""
+        atexit.unregister(self.stop)
+        if self.process.poll() is None:
+            self.process.terminate()
+            try:
+                self.process.wait(5)
+            except subprocess.TimeoutExpired:
+                self.process.kill()
+                self.process.wait()
+        self._reader.join(1)
+        if self.process.stdout is not None and not self._reader.is_alive():
+            self.process.stdout.close()
+
+    def __enter__(self) -> Self:
+        return self
+
+    def __exit__(
+        self,
+        kind: type[BaseException] | None,
+        error: BaseException | None,
+        trace: TracebackType | None,
+    ) -> None:
+        self.stop()
+
+    def _read(self) -> None:
+        """Keep the log flowing, and note where the server listens."""
+        if self.process.stdout is None:
+            return
+        for line in self.process.stdout:
+            self._log.append(line.rstrip())
+            with self._changed:
+                if found := _LISTENING.search(_message(line)):
+                    self._addresses[found[1]] = found[2]
+                self._changed.notify_all()
+        with self._changed:
+            self._changed.notify_all()
+
+
+def start_server(
+    program: str | PathLike[str] | None = None,
+    *,
+    selection_files: Sequence[str | PathLike[str]] = (),
+    particle_files: Sequence[str | PathLike[str]] = (),
+    arguments: Sequence[str] = (),
+    wait: float = 10.0,
+) -> LocalServer:
+    """Start a server on free loopback ports of this machine.
+
+    Args:
+        program: The `kinegate` program. By default that of the environment variable
+            KINEGATE, or the one on the path.
+        selection_files: Selections that callers may then name.
+        particle_files: Particles to add to the table, or to override.
+        arguments: Further arguments of `kinegate serve`.
+        wait: Time in second to wait for it to listen.
+
+    >>> with kinegate.start_server() as local, local.connect() as client:
+    ...     client.particle("p").charge
+    1.0
+    """
+    loopback = "127.0.0.1:0"
+    command = [
+        *(find_program(program), "serve"),
+        *("--general-address", loopback, "--gate-address", loopback),
+        *("--health-address", "", "--metrics-address", ""),
+        *("--drain-notice", "0s", "--drain-time", "2s", "--log-level", "info"),
+    ]
+    for flag, files in (
+        ("--selection-files", selection_files),
+        ("--particle-files", particle_files),
+    ):
+        if files:
+            command += [flag, ",".join(os.fspath(f) for f in files)]
+    return LocalServer([*command, *arguments], wait)
+
+
+def find_program(program: str | PathLike[str] | None = None) -> str:
+    """Return the path of the `kinegate` program, or say how to get it."""
+    wanted = os.fspath(program or os.environ.get("KINEGATE") or "kinegate")
+    found = shutil.which(wanted)
+    if found is None:
+        raise UsageError(
+            f"no program {wanted!r}; build it with 'go install ./service/cmd/kinegate' in a clone "
+            "of the repository, and put it on the path or name it in KINEGATE"
+        )
+    return found
+
+
+def _message(line: str) -> str:
+    try:
+        parsed = json.loads(line)
+    except ValueError:
+        return line
+    return str(parsed.get("message", "")) if isinstance(parsed, dict) else line
