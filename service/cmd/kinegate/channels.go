@@ -26,6 +26,7 @@ func channelsCommand(p program) *cobra.Command {
 	e := newEnvironment(p)
 	initial := &initialFlags{}
 	flags := &channelsFlags{}
+	var picture drawing
 	c := &cobra.Command{
 		Use:   "channels BEAM TARGET",
 		Short: "List every final state that the conservation laws and the energy allow",
@@ -50,11 +51,12 @@ func channelsCommand(p program) *cobra.Command {
 				return err
 			}
 			defer closeClient()
-			return e.listChannels(c.Context(), client, request, flags.limit)
+			return e.listChannels(c.Context(), client, request, flags.limit, &picture)
 		},
 	}
 	e.flags(c)
 	initial.add(c)
+	picture.flag(c)
 	f := c.Flags()
 	f.Int32Var(&flags.bodies, "bodies", 2, "largest number of bodies, 1 to 5")
 	f.Int32Var(&flags.leastBodies, "least-bodies", 0, "least number of bodies, 1 to 5; 2 or --bodies if not given")
@@ -89,8 +91,13 @@ func (f *channelsFlags) request(names []string) (*kinegatev1.ListOpenChannelsReq
 
 // listChannels walks the pages and prints them.
 func (e *environment) listChannels(
-	ctx context.Context, client *kinegate.Client, request *kinegatev1.ListOpenChannelsRequest, limit int,
+	ctx context.Context, client *kinegate.Client, request *kinegatev1.ListOpenChannelsRequest, limit int, picture *drawing,
 ) error {
+	draw, err := picture.asked()
+	if err != nil {
+		return err
+	}
+	var channels []*kinegatev1.OpenChannel
 	t := text.NewTable("channel", ">excess energy", ">beam energy at threshold", "")
 	const largestPage = 1000
 	for {
@@ -107,6 +114,9 @@ func (e *environment) listChannels(
 		for _, channel := range reply.GetChannels() {
 			channelRow(t, channel)
 		}
+		if draw {
+			channels = append(channels, reply.GetChannels()...)
+		}
 		done, err := e.reply(reply)
 		if err != nil {
 			return err
@@ -117,6 +127,11 @@ func (e *environment) listChannels(
 		}
 		if !done {
 			if err := e.printChannels(t, request, reply); err != nil {
+				return err
+			}
+		}
+		if draw {
+			if err := picture.save(e, channelsPicture(request.GetInitialParticles(), channels, reply)); err != nil {
 				return err
 			}
 		}

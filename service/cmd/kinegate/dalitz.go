@@ -19,6 +19,7 @@ func dalitzCommand(p program) *cobra.Command {
 	var bands []string
 	var resolution float64
 	var points bool
+	var picture drawing
 	c := &cobra.Command{
 		Use:   "dalitz TEXT",
 		Short: "Trace the Dalitz boundary of a decay or reaction to three bodies",
@@ -62,6 +63,17 @@ func dalitzCommand(p program) *cobra.Command {
 					return err
 				}
 			}
+			if draw, err := picture.asked(); err != nil {
+				return err
+			} else if draw {
+				drawn, err := dalitzPicture(reply, bands)
+				if err != nil {
+					return err
+				}
+				if err := picture.save(e, drawn); err != nil {
+					return err
+				}
+			}
 			for _, b := range reply.GetBoundaries() {
 				if b.GetState() != kinegatev1.ChannelState_CHANNEL_STATE_CLOSED {
 					return nil
@@ -72,6 +84,7 @@ func dalitzCommand(p program) *cobra.Command {
 	}
 	e.flags(c)
 	initial.add(c)
+	picture.flag(c)
 	f := c.Flags()
 	f.Lookup("sqrt-s").Usage = `energies in the centre-of-mass frame, such as "1.8 GeV" or "1.6 to 2.2 by 0.2 GeV", in place of beams`
 	f.StringArrayVar(&bands, "band", nil, `pair and mass whose stretch of the region is wanted, such as "pi+ pi- at 775 MeV"; may be given several times`)

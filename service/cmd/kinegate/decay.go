@@ -27,6 +27,7 @@ type decayValues struct {
 func decayCommand(p program) *cobra.Command {
 	e := newEnvironment(p)
 	flags := &decayFlags{}
+	var picture drawing
 	c := &cobra.Command{
 		Use:   "decay TEXT",
 		Short: "Say what a decay releases and where its daughters go, at rest or in flight",
@@ -39,6 +40,10 @@ func decayCommand(p program) *cobra.Command {
 		Args: usage(cobra.ExactArgs(1)),
 		RunE: func(c *cobra.Command, args []string) error {
 			request, values, err := flags.request(args[0])
+			if err != nil {
+				return err
+			}
+			draw, err := picture.asked()
 			if err != nil {
 				return err
 			}
@@ -60,6 +65,11 @@ func decayCommand(p program) *cobra.Command {
 					return err
 				}
 			}
+			if draw {
+				if err := e.drawDecay(ctx, client, request, reply, &picture); err != nil {
+					return err
+				}
+			}
 			if reply.GetState() == kinegatev1.ChannelState_CHANNEL_STATE_CLOSED {
 				return errNo
 			}
@@ -67,6 +77,7 @@ func decayCommand(p program) *cobra.Command {
 		},
 	}
 	e.flags(c)
+	picture.flag(c)
 	f := c.Flags()
 	f.StringVar(&flags.total, "parent", "", "total energy of the parent; at rest if none of the three is given")
 	f.StringVar(&flags.kinetic, "parent-kinetic", "", "kinetic energy of the parent")

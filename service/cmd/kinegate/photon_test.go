@@ -1,7 +1,6 @@
 package main
 
 import (
-	"os"
 	"path/filepath"
 	"strings"
 	"testing"
@@ -59,35 +58,6 @@ func TestPhotonExitCodes(t *testing.T) {
 			code, out, errs := command(t, shellWords(c.arguments)...)
 			if code != c.code || !strings.Contains(out+errs, c.says) {
 				t.Errorf("code %d, want %d with %q; says\n%s%s", code, c.code, c.says, out, errs)
-			}
-		})
-	}
-}
-
-// TestPhotonPictures draws every picture of the photon commands and looks for the names
-// of their axes.
-func TestPhotonPictures(t *testing.T) {
-	t.Parallel()
-	for _, c := range []struct{ arguments, says string }{
-		{`photon pair --sqrt-s "1.45 MeV"`, "cross-section per solid angle (mb/sr)"},
-		{`photon pair --sqrt-s "1 MeV"`, "energy in the centre of mass, sqrt(s) (MeV)"},
-		{`photon pair --sqrt-s "100 GeV" --max-cosine 0.9`, "opposite helicities"},
-		{`photon compton --photon "661.657 keV"`, "Thomson"},
-		{`photon compton --photon "1 eV" --beam "1 GeV"`, "from the lepton in flight (deg)"},
-		{`photon backscatter --beam "3 GeV" --light "351.1 nm"`, "spectrum (mb/MeV)"},
-		{`photon backscatter --beam "3 GeV" --light "351.1 nm" --linear 0.5`, "linear (degree)"},
-		{`photon annihilation --sqrt-s "10 GeV"`, "cosine of a photon"},
-		{`photon annihilation --beam-kinetic "0 eV"`, "energy in the centre of mass"},
-		{`photon-field --temperature "2.7255 K" --photon "1 EeV" --distance "8 kpc"`, "the distance, 8 kpc"},
-		{`photon-field --min-energy "0.01 eV" --max-energy "10 eV" --density "1 /cm3"`, "energy of the photon"},
-	} {
-		t.Run(c.arguments, func(t *testing.T) {
-			t.Parallel()
-			name := filepath.Join(t.TempDir(), "picture.svg")
-			code, _, errs := command(t, append(shellWords(c.arguments), "--plot", name)...)
-			text, err := os.ReadFile(name)
-			if err != nil || !strings.Contains(string(text), c.says) {
-				t.Fatalf("code %d, %v: no %q in %d bytes\n%s", code, err, c.says, len(text), errs)
 			}
 		})
 	}

@@ -178,9 +178,16 @@ func (n notes) point(c draw.Canvas, x Point, at vg.Point) {
 	case Above:
 		style.XAlign, style.YAlign = text.XCenter, text.YBottom
 		at.Y += gap
+	case Middle:
+		style.XAlign = text.XCenter
 	case Below:
 		style.XAlign, style.YAlign = text.XCenter, text.YTop
 		at.Y -= gap
+	}
+	// White behind the letters keeps them readable across lines.
+	if box := style.Rectangle(x.Text); x.Text != "" {
+		c.SetColor(color.White)
+		c.Fill(box.Add(at).Path())
 	}
 	c.FillText(style, at, x.Text)
 }

@@ -109,6 +109,7 @@ const (
 	Left
 	Above
 	Below
+	Middle // on the point
 )
 
 // Ruler is a thin straight line across the panel at one value.
