@@ -1,13 +1,18 @@
 package server
 
 import (
+	"crypto/sha256"
+	"flag"
 	"fmt"
+	"os"
 	"runtime"
 	"testing"
 
 	"google.golang.org/protobuf/proto"
 
 	"example.org/kinegate/clients/go/history"
+	"example.org/kinegate/kinematics"
+	"example.org/kinegate/proto/column"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 )
 
@@ -28,6 +33,47 @@ func TestBitsDoNotDependOnBlocksOrWorkers(t *testing.T) {
 				verify(t, c, history.Run{Client: r.client(t), Open: history.AllEntries(), Events: events, PerBlock: perBlock})
 			})
 		}
+	}
+}
+
+var update = flag.Bool("update", false, "rewrite testdata/golden/verdicts.txt, after the version of the numerics was raised")
+
+// TestGoldenVerdicts compares what a stream says about the sample with a digest that is
+// the same on every architecture.
+func TestGoldenVerdicts(t *testing.T) {
+	const (
+		file   = "testdata/golden/verdicts.txt"
+		events = 3000
+	)
+	r := start(t)
+	sum, accepted := sha256.New(), 0
+	verify(t, history.New(0), history.Run{
+		Client: r.client(t), Open: history.AllEntries(), Events: events, PerBlock: 500,
+		Answered: func(v *kinegatev1.VerdictBlock) {
+			records, err := history.Records(v, int(v.GetEventCount()))
+			if err != nil {
+				t.Error(err)
+			}
+			for _, record := range records {
+				sum.Write([]byte(record))
+			}
+			for i := range int(v.GetEventCount()) {
+				if column.Bit(v.GetGate(), i) {
+					accepted++
+				}
+			}
+		},
+	})
+	got := fmt.Sprintf("numerics %d, %d events, %d accepted, sha256 %x\n", kinematics.NumericsVersion, events, accepted, sum.Sum(nil))
+	if accepted < events/100 || accepted > events/2 {
+		t.Errorf("the sample tells little: %d accepted", accepted)
+	}
+	if *update {
+		writeFile(t, file, []byte(got))
+	}
+	want, err := os.ReadFile(file)
+	if err != nil || got != string(want) {
+		t.Errorf("got %swant %s%v", got, want, err)
 	}
 }
 

@@ -11,7 +11,8 @@ import (
 )
 
 // Photons are events [from, from+count) of an invented sample: two to six photons
-// each, one event in 50 with a NaN. Event i is the same in whatever block it comes.
+// each, one event in 50 with a NaN. Event i is the same in whatever block it comes,
+// and on every processor: no product feeds a sum that could be fused with it.
 func Photons(from, count int) *kinegatev1.EventBlock {
 	var ids []int64
 	var energies, theta, phi []float64
@@ -21,8 +22,8 @@ func Photons(from, count int) *kinegatev1.EventBlock {
 		ids = append(ids, int64(i))
 		n := 2 + r.IntN(5)
 		for range n {
-			energies = append(energies, 0.05+0.4*r.Float64())
-			theta = append(theta, math.Acos(2*r.Float64()-1))
+			energies = append(energies, 0.05+float64(0.4*r.Float64()))
+			theta = append(theta, math.Pi*r.Float64())
 			phi = append(phi, math.Pi*(2*r.Float64()-1))
 		}
 		if i%50 == 49 {
@@ -64,7 +65,10 @@ func PhotonSelection() *kinegatev1.Selection {
 			},
 			{
 				Name: "pairs", Reaction: "eta -> pi0 pi0, pi0 -> gamma gamma", ExtraObjects: extra,
-				Condition: &kinegatev1.Condition{Window: mass(0.05, 0.4, "pi0[0]")}, Record: record("pi0[0]", "pi0[1]"),
+				Condition: &kinegatev1.Condition{AllOf: []*kinegatev1.Condition{
+					{Window: mass(0.1, 0.17, "pi0[0]")}, {Window: mass(0.1, 0.17, "pi0[1]")},
+				}},
+				Record: record("pi0[0]", "pi0[1]"),
 			},
 		},
 	}
