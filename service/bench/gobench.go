@@ -1,0 +1,88 @@
+package main
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"os/exec"
+	"regexp"
+	"strconv"
+	"strings"
+)
+
+// measure is one measurement of a row, or a part of one.
+type measure = func(ctx context.Context) (float64, error)
+
+// benchmarkMetric runs one Go benchmark and reads a metric of it.
+func benchmarkMetric(folder, name, metric string) measure {
+	return func(ctx context.Context) (float64, error) {
+		pattern := "^" + strings.ReplaceAll(name, "/", "$/^") + "$"
+		//nolint:gosec // the arguments are those of the rows
+		output, err := exec.CommandContext(ctx, "go", "test", "-run", "^$", "-bench", pattern, folder).CombinedOutput()
+		if err != nil {
+			return 0, fmt.Errorf("%s: %w: %s", name, err, lastLine(string(output)))
+		}
+		return readMetric(string(output), metric)
+	}
+}
+
+// readMetric finds a number with its unit in the output of a benchmark.
+func readMetric(output, metric string) (float64, error) {
+	for line := range strings.Lines(output) {
+		if !strings.HasPrefix(line, "Benchmark") {
+			continue
+		}
+		fields := strings.Fields(line)
+		for i := 1; i < len(fields); i++ {
+			if fields[i] == metric {
+				return strconv.ParseFloat(fields[i-1], 64)
+			}
+		}
+	}
+	return 0, fmt.Errorf("the benchmark prints no %s", metric)
+}
+
+// perEvent is what the numpy scripts print for each size of their arrays.
+var perEvent = regexp.MustCompile(`([0-9.]+) ns an event`)
+
+// numpy runs a script of testdata/bench and returns the least time that it prints: its
+// arrays are then as large as suits numpy best.
+func numpy(script string, arguments ...string) measure {
+	return func(ctx context.Context) (float64, error) {
+		//nolint:gosec // the arguments are those of the rows
+		output, err := exec.CommandContext(ctx, "python3", append([]string{"testdata/bench/" + script}, arguments...)...).CombinedOutput()
+		if err != nil {
+			return 0, fmt.Errorf("%s: %w: %s", script, err, lastLine(string(output)))
+		}
+		least := 0.0
+		for _, found := range perEvent.FindAllStringSubmatch(string(output), -1) {
+			if x, err := strconv.ParseFloat(found[1], 64); err == nil && (least == 0 || x < least) {
+				least = x
+			}
+		}
+		if least == 0 {
+			return 0, errors.New(script + " prints no time")
+		}
+		return least, nil
+	}
+}
+
+// timesFaster is the ratio of two times: that of the other over our own.
+func timesFaster(own, other measure) measure {
+	return func(ctx context.Context) (float64, error) {
+		a, err := own(ctx)
+		if err != nil {
+			return 0, err
+		}
+		b, err := other(ctx)
+		if err != nil {
+			return 0, err
+		}
+		return b / a, nil
+	}
+}
+
+func lastLine(text string) string {
+	lines := strings.Split(strings.TrimSpace(text), "\n")
+	return lines[len(lines)-1]
+}
