@@ -29,35 +29,20 @@ func (f *Fitter) propagate() bool {
 	}
 	f.assemble(0)
 	if !f.factor(true) {
-		return false
-	}
-	f.covariance.n = p.variables
-	m, n := &s.matrix, p.variables
-	for v := range n {
-		b := s.right[p.measured:]
-		clear(b)
-		if v < p.measured {
-			for r := p.measured; r < m.n; r++ {
-				b[r-p.measured] = -m.entries[r*m.n+v]
-			}
-		} else {
-			b[v-p.measured] = s.scale[v]
+		f.assemble(0)
+		if !f.factorWhole() {
+			return false
 		}
-		s.pivots.solve(b)
+	}
+	n := p.variables
+	f.covariance.n = n
+	for v := range n {
+		clear(s.right)
+		s.right[v] = 1
+		f.solve()
 		for w := range v + 1 {
-			c := 0.0
-			if w < p.measured {
-				for r := p.measured; r < m.n; r++ {
-					c -= float64(m.entries[r*m.n+w] * b[r-p.measured])
-				}
-			} else {
-				c = b[w-p.measured] * s.scale[w]
-			}
-			if v == w && v < p.measured {
-				c++
-			}
-			f.covariance.entries[v*n+w] = c
-			f.covariance.entries[w*n+v] = c
+			f.covariance.entries[v*n+w] = s.right[w]
+			f.covariance.entries[w*n+v] = s.right[w]
 		}
 	}
 	return true

@@ -114,31 +114,21 @@ func (b *body) spreadOut(t *triangle) {
 		}
 		return
 	}
-	var full, half [3][3]float64
-	for a := range 3 {
-		for c := range 3 {
-			full[a][c] = t[max(a, c)][min(a, c)]
-		}
-	}
-	for a := range 3 {
-		for c := range 3 {
-			for d := c; d < 3; d++ {
-				half[a][c] += float64(full[a][d] * l[d][c])
-			}
-		}
-	}
-	for a := range 3 {
-		z := 0.0
-		for d := a; d < 3; d++ {
-			z += float64(l[d][a] * t[3][d])
-		}
-		t[3][a] = z
-		for c := range a + 1 {
-			sum := 0.0
-			for d := a; d < 3; d++ {
-				sum += float64(l[d][a] * half[d][c])
-			}
-			t[a][c] = sum
-		}
-	}
+	l00, l10, l11, l20, l21, l22 := l[0][0], l[1][0], l[1][1], l[2][0], l[2][1], l[2][2]
+	t00, t10, t11, t20, t21, t22 := t[0][0], t[1][0], t[1][1], t[2][0], t[2][1], t[2][2]
+	// T L, column by column, then L' from the left.
+	u00 := float64(t00*l00) + float64(t10*l10) + float64(t20*l20)
+	u10 := float64(t10*l00) + float64(t11*l10) + float64(t21*l20)
+	u20 := float64(t20*l00) + float64(t21*l10) + float64(t22*l20)
+	u11 := float64(t11*l11) + float64(t21*l21)
+	u21 := float64(t21*l11) + float64(t22*l21)
+	t[0][0] = float64(l00*u00) + float64(l10*u10) + float64(l20*u20)
+	t[1][0] = float64(l11*u10) + float64(l21*u20)
+	t[2][0] = l22 * u20
+	t[1][1] = float64(l11*u11) + float64(l21*u21)
+	t[2][1] = l22 * u21
+	t[2][2] = l22 * t22 * l22
+	t[3][0] = float64(l00*t[3][0]) + float64(l10*t[3][1]) + float64(l20*t[3][2])
+	t[3][1] = float64(l11*t[3][1]) + float64(l21*t[3][2])
+	t[3][2] = l22 * t[3][2]
 }

@@ -86,8 +86,8 @@ func (f *Fitter) lagrangian() float64 {
 	return sum
 }
 
-// gradient returns the derivatives of lambda'f as the fit sees them.
-func (f *Fitter) gradient() []float64 {
+// slopes returns the derivatives of lambda'f as the fit sees them.
+func (f *Fitter) slopes() []float64 {
 	p := f.problem
 	f.pull(f.multiplier)
 	out := make([]float64, p.variables)
@@ -126,7 +126,7 @@ func TestDerivatives(t *testing.T) {
 				}
 				p := f.problem
 				f.evaluate()
-				gradient := f.gradient()
+				gradient := f.slopes()
 				f.write(1)
 				m := append([]float64(nil), f.system.matrix.entries...)
 				n := f.system.matrix.n
@@ -143,7 +143,7 @@ func TestDerivatives(t *testing.T) {
 						for k, r := range f.residual {
 							slopes[k] += w * r / (12 * h)
 						}
-						for c, g := range f.gradient() {
+						for c, g := range f.slopes() {
 							row[c] += w * g / (12 * h)
 						}
 					}

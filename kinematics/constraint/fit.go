@@ -51,60 +51,96 @@ func (f *Fitter) chiSquare() float64 {
 func (f *Fitter) descend() Status {
 	clear(f.multiplier)
 	f.penalty = 1
+	for v, w := range f.problem.weight {
+		f.gradient[v] = w * f.x[v]
+	}
 	for range maxSteps {
 		if !f.direction() {
 			return Singular
 		}
-		f.result.Iterations++
 		if !f.search() {
 			return NotConverged
 		}
-		f.pull(f.multiplier)
-		f.result.Stationarity, f.result.Violation = f.stationarity(), f.violation()
-		if f.result.Stationarity <= Bound && f.result.Violation <= Bound {
+		if f.measure() {
 			return Converged
+		}
+		if f.near() {
+			f.solveStep()
+			for v, d := range f.step {
+				f.x[v] += d
+			}
+			f.evaluate()
+			copy(f.multiplier, f.next)
+			if f.measure() {
+				return Converged
+			}
 		}
 	}
 	return NotConverged
 }
 
-// direction finds the step and the next multipliers.
+// measure counts a step and tells whether the fit has converged.
+func (f *Fitter) measure() bool {
+	f.result.Iterations++
+	f.pull(f.multiplier)
+	f.result.Stationarity, f.result.Violation = f.stationarity(), f.violation()
+	return f.result.Stationarity <= Bound && f.result.Violation <= Bound
+}
+
+// near tells whether one more step with the same matrix will do. Newton's step of size
+// h leaves a residual r = C h^2, where 2 C h is how much the matrix changed; the same
+// matrix again leaves about 2 C h r = 2 r^2/h. A factor of four is to spare.
+func (f *Fitter) near() bool {
+	left, size := math.Max(f.result.Stationarity, f.result.Violation), 0.0
+	for v, d := range f.step {
+		size = worse(size, d/f.system.scale[v])
+	}
+	return 8*left*left <= Bound*size
+}
+
+// direction finds the step and the next multipliers. A matrix that is not that of a
+// minimum is tried again with less of the second derivatives, at last with none.
 func (f *Fitter) direction() bool {
-	part := 1.0
-	plain := true
+	part := 0.0
 	for _, l := range f.multiplier {
-		plain = plain && l == 0
+		if l != 0 {
+			part = 1
+		}
 	}
 	for {
-		if plain {
-			part = 0
-		}
 		f.assemble(part)
-		ok := f.factor(plain)
-		if !ok && !plain {
-			f.assemble(part)
-			ok = f.factorWhole()
-		}
-		if ok {
+		if f.factor(part == 0) {
 			break
 		}
-		if plain {
+		f.assemble(part)
+		if f.factorWhole() {
+			break
+		}
+		if part == 0 {
 			return false
 		}
-		part /= 4
-		plain = part < 0.05
+		if part /= 4; part < 0.05 {
+			part = 0
+		}
 	}
-	p := f.problem
-	for v, w := range p.weight {
-		f.system.right[v] = -w * f.x[v]
+	f.solveStep()
+	return true
+}
+
+// solveStep solves the factored system for the step and the next multipliers.
+func (f *Fitter) solveStep() {
+	right, n := f.system.right, len(f.x)
+	for v, g := range f.gradient {
+		right[v] = -g
 	}
 	for k, r := range f.residual {
-		f.system.right[p.variables+k] = -r
+		right[n+k] = -r
 	}
-	f.solve(plain)
-	copy(f.step, f.system.right)
-	copy(f.next, f.system.right[p.variables:])
-	return true
+	f.solve()
+	copy(f.step, right)
+	for k, l := range f.multiplier {
+		f.next[k] = l + right[n+k]
+	}
 }
 
 // The line search: the part of the expected gain that a step must bring, and the

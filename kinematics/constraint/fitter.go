@@ -16,11 +16,15 @@ type Fitter struct {
 	// start in units for what is not measured; step is the way to the next, before
 	// where the last step began.
 	x, before, step []float64
+	// gradient is that of the Lagrangian.
+	gradient []float64
 	// columns are the derivatives of each variable's four-momentum.
 	columns []vector
 	// residual are the constraints, sigma their standard deviations, and multiplier
 	// their multipliers.
 	residual, sigma, multiplier, next []float64
+	// squared are their variances.
+	squared []float64
 	// initial are the residuals before the first step.
 	initial []float64
 	// sums are the two sides of the mass constraints.
@@ -57,15 +61,17 @@ func (p *Problem) NewFitter() *Fitter {
 		x:            make([]float64, n),
 		before:       make([]float64, n),
 		step:         make([]float64, n),
+		gradient:     make([]float64, n),
 		columns:      make([]vector, n),
 		residual:     make([]float64, m),
 		initial:      make([]float64, m),
 		sigma:        make([]float64, m),
+		squared:      make([]float64, m),
 		multiplier:   make([]float64, m),
 		next:         make([]float64, m),
 		sums:         make([][2]vector, len(p.masses)),
 		pulls:        make([]vector, len(p.parts)),
-		system:       newSystem(n + m),
+		system:       newSystem(p),
 		covariance:   newMatrix(n),
 	}
 	for i := range f.bodies {
@@ -100,12 +106,21 @@ func (f *Fitter) evaluate() {
 	if p.z != none {
 		v[2] += float64(f.spreadZ * f.x[p.z])
 	}
-	var sum vector
-	total := math.Abs(p.known[3])
 	for i := range f.bodies {
 		b := &f.bodies[i]
 		b.place(f.x)
 		b.evaluate(&v, f.columns)
+	}
+	f.balance()
+}
+
+// balance computes the constraints from the momenta.
+func (f *Fitter) balance() {
+	p := f.problem
+	var sum vector
+	total := math.Abs(p.known[3])
+	for i := range f.bodies {
+		b := &f.bodies[i]
 		sum.add(b.sign, &b.momentum)
 		total += math.Abs(b.momentum[3])
 	}
@@ -191,17 +206,15 @@ func (f *Fitter) pull(multiplier []float64) {
 	}
 }
 
-// stationarity returns the largest component of the gradient of the Lagrangian in
-// units of standard deviations. An unmeasured parameter counts in units of the
-// change that moves the constraints by one standard deviation. The pulls are set.
+// stationarity computes the gradient of the Lagrangian and returns its largest component
+// in units of standard deviations. An unmeasured parameter counts in units of the change
+// that moves the constraints by one standard deviation. The pulls are set.
 func (f *Fitter) stationarity() float64 {
 	p := f.problem
-	largest := 0.0
 	for i := range f.bodies {
 		part := &p.parts[i]
 		for _, v := range part.vars[:part.count] {
-			g := float64(p.weight[v]*f.x[v]) + f.pulls[i].on(&f.columns[v])
-			largest = worse(largest, g*f.system.unit(v))
+			f.gradient[v] = float64(p.weight[v]*f.x[v]) + f.pulls[i].on(&f.columns[v])
 		}
 	}
 	if p.z != none {
@@ -211,7 +224,11 @@ func (f *Fitter) stationarity() float64 {
 				g += float64(f.spreadZ * f.pulls[i].on(&f.bodies[i].alongZ))
 			}
 		}
-		largest = worse(largest, g*f.system.unit(p.z))
+		f.gradient[p.z] = g
+	}
+	largest := 0.0
+	for v, g := range f.gradient {
+		largest = worse(largest, g*f.system.scale[v])
 	}
 	return largest
 }
@@ -229,7 +246,9 @@ func worse(largest, v float64) float64 {
 func (f *Fitter) violation() float64 {
 	largest := 0.0
 	for k, r := range f.residual {
-		r = math.Max(math.Abs(r)-f.rounding(k), 0)
+		if r = math.Abs(r) - f.rounding(k); r <= 0 {
+			continue
+		}
 		largest = worse(largest, r/f.sigma[k])
 	}
 	return largest

@@ -2,11 +2,10 @@ package constraint
 
 import "math"
 
-// indefinite is the factorisation P L D L' P' of the last rows of a matrix, D with
-// blocks of one or two rows.
+// indefinite is the factorisation P L D L' P' of a matrix, D with blocks of one or two
+// rows.
 type indefinite struct {
-	m     *matrix
-	first int
+	m *matrix
 	// swap is the row that row k was exchanged with; pair marks the first row of a
 	// block of two.
 	swap []int
@@ -31,16 +30,16 @@ func newIndefinite(n int) indefinite {
 	}
 }
 
-// factor factors rows first and on of m in place, with diagonal pivoting. It returns
-// false if the matrix is singular within the rounding or has a NaN.
+// factor factors m in place, with diagonal pivoting. It returns false if the matrix is
+// singular within the rounding or has a NaN.
 //
 // Source: J. R. Bunch and L. Kaufman, "Some stable methods for calculating inertia and
 // solving symmetric linear systems", Mathematics of Computation 31 (1977) 163,
 // algorithm A; section from memory.
-func (d *indefinite) factor(m *matrix, first int) bool {
-	d.m, d.first, d.positive = m, first, 0
+func (d *indefinite) factor(m *matrix) bool {
+	d.m, d.positive = m, 0
 	a, n := m.entries, m.n
-	for k := first; k < n; {
+	for k := 0; k < n; {
 		largest, colmax := k, 0.0
 		for i := k + 1; i < n; i++ {
 			if v := math.Abs(a[i*n+k]); v > colmax {
@@ -159,45 +158,41 @@ func (d *indefinite) eliminateTwo(k int) {
 	}
 }
 
-// solve overwrites b, whose first entry belongs to the first row factored, with the
-// solution.
+// solve overwrites b with the solution.
 func (d *indefinite) solve(b []float64) {
-	a, n, f := d.m.entries, d.m.n, d.first
-	size := n - f
-	for k := 0; k < size; k++ {
-		width := 1
-		if d.pair[f+k] {
-			width = 2
+	a, n := d.m.entries, d.m.n
+	for k := 0; k < n; k++ {
+		last := k
+		if d.pair[k] {
+			last++
 		}
-		last := k + width - 1
-		with := d.swap[f+last] - f
+		with := d.swap[last]
 		b[last], b[with] = b[with], b[last]
-		for i := last + 1; i < size; i++ {
+		for i := last + 1; i < n; i++ {
 			for j := k; j <= last; j++ {
-				b[i] -= float64(a[(f+i)*n+f+j] * b[j])
+				b[i] -= float64(a[i*n+j] * b[j])
 			}
 		}
-		at := (f+k)*n + f + k
-		if width == 1 {
-			b[k] *= a[at]
-			continue
+		v := b[k]
+		b[k] = a[k*n+k] * v
+		if last > k {
+			w := b[last]
+			b[k] += float64(a[last*n+k] * w)
+			b[last] = float64(a[last*n+k]*v) + float64(a[last*n+last]*w)
+			k++
 		}
-		v, w := b[k], b[k+1]
-		b[k] = float64(a[at]*v) + float64(a[at+n]*w)
-		b[k+1] = float64(a[at+n]*v) + float64(a[at+n+1]*w)
-		k++
 	}
-	for last := size - 1; last >= 0; last-- {
+	for last := n - 1; last >= 0; last-- {
 		k := last
-		if last > 0 && d.pair[f+last-1] {
+		if last > 0 && d.pair[last-1] {
 			k--
 		}
 		for j := k; j <= last; j++ {
-			for i := last + 1; i < size; i++ {
-				b[j] -= float64(a[(f+i)*n+f+j] * b[i])
+			for i := last + 1; i < n; i++ {
+				b[j] -= float64(a[i*n+j] * b[i])
 			}
 		}
-		with := d.swap[f+last] - f
+		with := d.swap[last]
 		b[last], b[with] = b[with], b[last]
 		last = k
 	}

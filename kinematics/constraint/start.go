@@ -37,7 +37,7 @@ func (f *Fitter) begin() {
 	f.evaluate()
 	if missing > 0 {
 		f.share(missing)
-		f.evaluate()
+		f.balance()
 	}
 	if others || missing > 1 {
 		f.settle()
@@ -96,6 +96,8 @@ func (f *Fitter) share(missing int) {
 		for a := range b.count {
 			b.start[a] = lack[a] / sign
 		}
+		b.place(f.x)
+		b.evaluate(&f.vertex, f.columns)
 	}
 }
 
@@ -106,22 +108,22 @@ func (f *Fitter) settle() {
 	for range startSteps {
 		f.assemble(0)
 		for v := p.measured; v < p.variables; v++ {
-			at := v*m.n + v
-			m.entries[at] = startWeight
+			m.entries[v*m.n+v] = startWeight / (s.scale[v] * s.scale[v])
 			if p.weight[v] > 0 {
-				m.entries[at] = startHold
+				m.entries[v*m.n+v] = startHold
 			}
 			s.right[v] = 0
 		}
 		for k, r := range f.residual {
 			i := p.variables + k
-			m.entries[i*m.n+i] = -1
-			s.right[i] = -r * s.scale[i]
+			m.entries[i*m.n+i] = -f.sigma[k] * f.sigma[k]
+			s.right[i] = -r
 		}
-		if !s.pivots.factor(m, p.measured) {
+		if !s.border.factor(s, p.measured) {
 			return
 		}
-		s.pivots.solve(s.right[p.measured:])
+		s.scaleRight(p.measured)
+		s.border.solve(s.right[p.measured:])
 		largest := 0.0
 		for v := range f.step {
 			f.step[v] = 0

@@ -22,31 +22,22 @@ func (m *matrix) add(a, b int, v float64) {
 	m.entries[a*m.n+b] += v
 }
 
-// definite is how much of a diagonal entry of at least one must be left as a pivot
-// for a block to count as positive definite. Below it the block is solved with
-// pivoting.
-const definite = 0x1p-10
-
 // cholesky factors the block of the given rows in place, L L' = block, with the
-// inverse on the diagonal of L. It returns false if the block is not positive definite.
-func (m *matrix) cholesky(first, size int) bool {
-	for i := first; i < first+size; i++ {
-		row := m.entries[i*m.n+first : i*m.n+i+1]
-		for j := range row {
-			other := m.entries[(first+j)*m.n+first : (first+j)*m.n+first+j+1]
-			v := row[j]
-			for k, w := range other[:j] {
-				v -= float64(row[k] * w)
-			}
-			if j < len(row)-1 {
-				row[j] = v * other[j]
-				continue
-			}
-			if !(v > definite) {
-				return false
-			}
-			row[j] = 1 / math.Sqrt(v)
+// inverse on the diagonal of L. It returns false if a pivot is not above the least.
+func (m *matrix) cholesky(first, size int, least float64) bool {
+	at := first * (m.n + 1)
+	for i := range size {
+		row := m.entries[at+i*m.n:][:i+1]
+		done := row[:i]
+		for j := range done {
+			lower := m.entries[at+j*m.n:][:j+1]
+			done[j] = (done[j] - dot(lower[:j], done)) * lower[j]
 		}
+		pivot := row[i] - dot(done, done)
+		if !(pivot > least) {
+			return false
+		}
+		row[i] = 1 / math.Sqrt(pivot)
 	}
 	return true
 }

@@ -9,28 +9,37 @@ import "math"
 //
 // H = W + second derivatives of lambda'f, W the weights of the variables. Its unknowns
 // stand in the order of the Problem. The blocks of the clusters are eliminated first,
-// by Cholesky factors; what they leave of the border and the multipliers is solved
-// with pivoting. Where a block is not positive definite all is solved with pivoting.
+// by Cholesky factors, then the border is solved. Where a block is not positive
+// definite the whole is solved with pivoting.
 type system struct {
 	matrix matrix
+	border border
 	pivots indefinite
 	right  []float64
-	// scale makes the unmeasured variables and the constraints comparable: the change
-	// that moves the constraints by one standard deviation, and one over the
-	// standard deviation; 1 for measured variables.
+	// scale makes the rows of the border comparable, where they are solved: for an
+	// unmeasured variable the change that moves the constraints by one standard
+	// deviation, for a constraint one over its standard deviation; 1 for measured
+	// variables.
 	scale    []float64
 	triangle triangle
-	// whole says that no cluster was eliminated.
-	whole bool
+	// whole says that no cluster was eliminated, plain that those that were are unit
+	// matrices.
+	whole, plain bool
 }
 
-func newSystem(n int) system {
-	return system{
+func newSystem(p *Problem) system {
+	n := p.variables + p.constraints()
+	s := system{
 		matrix: newMatrix(n),
+		border: border{matrix: newMatrix(n - p.measured), constraints: p.constraints()},
 		pivots: newIndefinite(n),
 		right:  make([]float64, n),
 		scale:  make([]float64, n),
 	}
+	for i := range s.scale {
+		s.scale[i] = 1
+	}
+	return s
 }
 
 // unit is the natural unit of a variable.
@@ -120,25 +129,45 @@ func (f *Fitter) alongZ(s *side) vector {
 	return sum
 }
 
-// writeConstraints writes the derivatives of the constraints.
+// writeConstraints writes the derivatives of the constraints and sums their squares over
+// the measured variables into squares.
 func (f *Fitter) writeConstraints() {
 	p, m := f.problem, &f.system.matrix
 	for k, c := range p.balance {
 		row := m.row(p.variables + k)
-		for i := range p.parts {
-			r := &p.parts[i]
-			for _, v := range r.vars[:r.count] {
-				row[v] = r.sign * c.of(&f.columns[v])
-			}
-			if r.repointed && p.z != none {
-				row[p.z] += float64(r.sign * f.spreadZ * c.of(&f.bodies[i].alongZ))
-			}
+		sum := 0.0
+		for v, sign := range p.sign {
+			a := sign * c.of(&f.columns[v])
+			row[v] = a
+			sum += float64(p.weight[v] * a * a)
 		}
+		if p.z != none {
+			a := 0.0
+			for i := range f.bodies {
+				if b := &f.bodies[i]; b.repointed {
+					a += float64(b.sign * f.spreadZ * c.of(&b.alongZ))
+				}
+			}
+			row[p.z] = a
+			sum += float64(p.weight[p.z] * a * a)
+		}
+		f.squared[k] = sum
 	}
 	for k := range p.masses {
 		row := m.row(p.variables + len(p.balance) + k)
-		f.writeSide(row, &p.masses[k].left, &f.sums[k][0], 2)
-		f.writeSide(row, &p.masses[k].right, &f.sums[k][1], -2)
+		left, right := &p.masses[k].left, &p.masses[k].right
+		f.writeSide(row, left, &f.sums[k][0], 2)
+		f.writeSide(row, right, &f.sums[k][1], -2)
+		sum := 0.0
+		for _, s := range [2]*side{left, right} {
+			for _, v := range s.vars {
+				sum += float64(p.weight[v] * row[v] * row[v])
+			}
+		}
+		if p.z != none {
+			sum += float64(p.weight[p.z] * row[p.z] * row[p.z])
+		}
+		f.squared[len(p.balance)+k] = sum
 	}
 }
 
@@ -157,29 +186,21 @@ func (f *Fitter) writeSide(row []float64, s *side, sum *vector, twice float64) {
 // energies or of its square: constraints of what is known exactly keep a scale.
 const exact = 0x1p-40
 
-// rescale finds the standard deviations of the constraints and scales the border.
+// rescale finds the standard deviations of the constraints and the scales of the border.
 func (f *Fitter) rescale() {
 	p, s := f.problem, &f.system
 	m := &s.matrix
-	for k := range f.residual {
-		row := m.row(p.variables + k)
+	for k, sum := range f.squared {
 		least := exact * f.total
 		if k >= len(p.balance) {
 			least *= f.total
 		}
-		sum := float64(least * least)
-		for _, a := range row[:p.measured] {
-			sum += float64(a * a)
-		}
-		if p.z != none && p.weight[p.z] > 0 {
-			sum += float64(row[p.z] * row[p.z])
-		}
 		if !f.held {
-			f.sigma[k] = math.Sqrt(sum)
+			f.sigma[k] = math.Sqrt(sum + float64(least*least))
 		}
 		s.scale[p.variables+k] = 1 / f.sigma[k]
 	}
-	for v := range p.variables {
+	for v := p.measured; v < p.variables; v++ {
 		s.scale[v] = 1
 		if p.weight[v] > 0 {
 			continue
@@ -193,127 +214,99 @@ func (f *Fitter) rescale() {
 			s.scale[v] = 1 / math.Sqrt(sum)
 		}
 	}
-	for r := p.measured; r < m.n; r++ {
-		scale := s.scale[r]
-		row := m.row(r)
-		for v := range row {
-			row[v] *= scale * s.scale[v]
-		}
-	}
 }
 
-// factor factors the system. It returns false if it is singular or if H does not bend
-// upwards along the constraints.
+// definite is how much of a diagonal entry of at least one must be left as a pivot
+// for a cluster to be eliminated.
+const definite = 0x1p-10
+
+// factor factors the system without pivoting. It returns false where that is not stable;
+// a plain system has no second derivatives.
 func (f *Fitter) factor(plain bool) bool {
 	p, s := f.problem, &f.system
-	s.whole = false
+	s.whole, s.plain = false, plain
 	for i := range p.clusters {
-		if c := &p.clusters[i]; !s.eliminate(c, plain) {
+		if !s.eliminate(&p.clusters[i]) {
 			return false
 		}
 	}
-	return s.pivots.factor(&s.matrix, p.measured) && s.pivots.positive == p.variables-p.measured
+	return s.border.factor(s, p.measured)
 }
 
-// factorWhole does the same with pivoting from the start.
+// factorWhole factors the system with pivoting. It returns false if it is singular or if
+// H does not bend upwards along the constraints.
 func (f *Fitter) factorWhole() bool {
 	s := &f.system
 	s.whole = true
-	return s.pivots.factor(&s.matrix, 0) && s.pivots.positive == f.problem.variables
+	for r := range s.matrix.n {
+		scale, row := s.scale[r], s.matrix.row(r)
+		for i, other := range s.scale[:len(row)] {
+			row[i] *= scale * other
+		}
+	}
+	return s.pivots.factor(&s.matrix) && s.pivots.positive == f.problem.variables
 }
 
-// eliminate takes a cluster out of the rows that it mixes with. A plain one is the unit
-// matrix.
-func (s *system) eliminate(c *cluster, plain bool) bool {
+// eliminate takes a cluster out of the rows that it mixes with.
+func (s *system) eliminate(c *cluster) bool {
 	m := &s.matrix
-	if !plain {
-		if !m.cholesky(c.first, c.size) {
+	if !s.plain {
+		if !m.cholesky(c.first, c.size, definite) {
 			return false
 		}
 		for _, r := range c.rows {
-			row := m.entries[r*m.n+c.first:][:c.size]
-			for j := range row {
-				lower := m.entries[(c.first+j)*m.n+c.first:][:j+1]
-				v := row[j]
-				for k, w := range lower[:j] {
-					v -= float64(w * row[k])
-				}
-				row[j] = v * lower[j]
-			}
+			m.forward(c.first*(m.n+1), m.entries[r*m.n+c.first:][:c.size])
 		}
 	}
 	for i, r := range c.rows {
 		left := m.entries[r*m.n+c.first:][:c.size]
+		out := m.entries[r*m.n:][:r+1]
 		for _, q := range c.rows[:i+1] {
-			right := m.entries[q*m.n+c.first:][:c.size]
-			sum := 0.0
-			for k, w := range left {
-				sum += float64(w * right[k])
-			}
-			m.entries[r*m.n+q] -= sum
+			out[q] -= dot(left, m.entries[q*m.n+c.first:])
 		}
 	}
 	return true
 }
 
-// solve overwrites right with the solution; plain as in factor.
-func (f *Fitter) solve(plain bool) {
+// solve overwrites right with the solution.
+func (f *Fitter) solve() {
 	p, s := f.problem, &f.system
 	m, b := &s.matrix, s.right
-	for i, scale := range s.scale {
-		b[i] *= scale
-	}
 	if s.whole {
+		s.scaleRight(0)
 		s.pivots.solve(b)
-	} else {
-		for i := range p.clusters {
-			c := &p.clusters[i]
-			part := b[c.first:][:c.size]
-			if !plain {
-				for j := range part {
-					lower := m.entries[(c.first+j)*m.n+c.first:][:j+1]
-					v := part[j]
-					for k, w := range lower[:j] {
-						v -= float64(w * part[k])
-					}
-					part[j] = v * lower[j]
-				}
-			}
-			for _, r := range c.rows {
-				for k, w := range m.entries[r*m.n+c.first:][:c.size] {
-					b[r] -= float64(w * part[k])
-				}
-			}
+		s.scaleRight(0)
+		return
+	}
+	for i := range p.clusters {
+		c := &p.clusters[i]
+		part := b[c.first:][:c.size]
+		if !s.plain {
+			m.forward(c.first*(m.n+1), part)
 		}
-		s.pivots.solve(b[p.measured:])
-		for i := range p.clusters {
-			s.back(&p.clusters[i], plain)
+		for _, r := range c.rows {
+			b[r] -= dot(part, m.entries[r*m.n+c.first:])
 		}
 	}
-	for i, scale := range s.scale {
-		b[i] *= scale
+	s.scaleRight(p.measured)
+	s.border.solve(b[p.measured:])
+	s.scaleRight(p.measured)
+	for i := range p.clusters {
+		c := &p.clusters[i]
+		part := b[c.first:][:c.size]
+		for _, r := range c.rows {
+			subtract(part, b[r], m.entries[r*m.n+c.first:])
+		}
+		if !s.plain {
+			m.backward(c.first*(m.n+1), part)
+		}
 	}
 }
 
-// back finds the unknowns of a cluster from those of the border.
-func (s *system) back(c *cluster, plain bool) {
-	m := &s.matrix
-	part := s.right[c.first:][:c.size]
-	for _, r := range c.rows {
-		w := s.right[r]
-		for k, v := range m.entries[r*m.n+c.first:][:c.size] {
-			part[k] -= float64(v * w)
-		}
-	}
-	if plain {
-		return
-	}
-	for j := c.size - 1; j >= 0; j-- {
-		lower := m.entries[(c.first+j)*m.n+c.first:][:j+1]
-		v := part[j] * lower[j]
-		part[j] = v
-		for k := range j {
-			part[k] -= float64(lower[k] * v)
-		}
+// scaleRight applies the scales to the right side from a row on.
+func (s *system) scaleRight(from int) {
+	right := s.right[from:]
+	for i, scale := range s.scale[from:][:len(right)] {
+		right[i] *= scale
 	}
 }
