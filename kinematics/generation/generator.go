@@ -116,7 +116,7 @@ func (g *Generator) endCeiling(p *plan, high float64) float64 {
 // towards the threshold.
 func (g *Generator) meanFractions(p *plan, low, high float64) *Curve {
 	const nodes, draws = 48, 2000
-	w := g.newWorker()
+	w := g.NewWorker()
 	c := &Curve{}
 	for i := range nodes + 1 {
 		x := float64(i) / nodes
@@ -194,9 +194,9 @@ func (g *Generator) Fill(first int64, count int, truth *event.Truth) (Stats, err
 	if count < 0 || count > 0 && first > math.MaxInt64-int64(count)+1 {
 		return Stats{}, fault.New(fault.Invalid, "event_count", strconv.Itoa(count), ">= 0, the last event's number within 64 bits").In("generation.Fill")
 	}
-	w := g.newWorker()
+	w := g.NewWorker()
 	for i := range count {
-		w.event(first+int64(i), truth)
+		w.Event(first+int64(i), truth)
 	}
 	return w.stats, nil
 }
@@ -211,13 +211,10 @@ func (g *Generator) MeasureBound(channel, n int) (largest, mean float64, err err
 	if n < 1 {
 		return 0, 0, fault.New(fault.Invalid, "event_count", strconv.Itoa(n), ">= 1").In("generation.MeasureBound")
 	}
-	w := g.newWorker()
-	w.plan = g.plans[channel]
-	w.spaces = w.all[channel]
+	w := g.NewWorker()
 	sum := 0.0
 	for i := range n {
-		w.stream = random.New(g.config.Seed, random.Bounds, int64(i))
-		f := w.fraction()
+		f := w.Fraction(channel, int64(i))
 		largest = max(largest, f)
 		sum += f
 	}

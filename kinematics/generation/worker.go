@@ -11,8 +11,14 @@ import (
 // lightSpeed in metres a second, exact by definition of the metre.
 const lightSpeed = 299_792_458
 
-// worker makes events one after the other in memory of its own.
-type worker struct {
+// Worker makes events one after the other in memory of its own. Each goroutine
+// needs its own.
+type Worker struct {
+	// Stop is asked now and then within an event, as events with a high bound or
+	// a narrow density can take long; nil is never asked. An event during which
+	// it returns true is left without particles and must not be used.
+	Stop func() bool
+
 	generator *Generator
 	stats     Stats
 	stream    random.Stream
@@ -28,8 +34,9 @@ type worker struct {
 	points  [MaxBodies]momentum.Four
 }
 
-func (g *Generator) newWorker() *worker {
-	w := &worker{generator: g}
+// NewWorker returns a worker.
+func (g *Generator) NewWorker() *Worker {
+	w := &Worker{generator: g}
 	largest := 0
 	for _, p := range g.plans {
 		spaces := []PhaseSpace{p.root.lowest}
@@ -47,10 +54,31 @@ func (g *Generator) newWorker() *worker {
 	return w
 }
 
-// event makes one event. The order of its draws is frozen: channel, vertex,
+// Fraction draws point i of a channel, which must be one of the generator's, and
+// returns its weight as a fraction of the analytic ceiling. The points are not
+// those of events.
+func (w *Worker) Fraction(channel int, i int64) float64 {
+	g := w.generator
+	w.plan, w.spaces = g.plans[channel], w.all[channel]
+	w.stream = random.New(g.config.Seed, random.Bounds, i)
+	return w.fraction()
+}
+
+// Stats counts the worker's events so far.
+func (w *Worker) Stats() Stats { return w.stats }
+
+// stopEvery is how many draws lie between two looks at Stop: some 50 microseconds.
+const stopEvery = 256
+
+// stopped looks at Stop after some draws of a loop.
+func (w *Worker) stopped(draw int) bool {
+	return draw%stopEvery == stopEvery-1 && w.Stop != nil && w.Stop()
+}
+
+// Event appends one event to truth. The order of its draws is frozen: channel, vertex,
 // accidental candidates, production with its redraws, decays in text order,
 // ages in text order.
-func (w *worker) event(id int64, truth *event.Truth) {
+func (w *Worker) Event(id int64, truth *event.Truth) {
 	g := w.generator
 	w.stream = random.New(g.config.Seed, random.Generation, id)
 	channel := 0
@@ -87,7 +115,7 @@ func (w *worker) event(id int64, truth *event.Truth) {
 	w.count(weight)
 }
 
-func (w *worker) count(weight float64) {
+func (w *Worker) count(weight float64) {
 	w.stats.Events++
 	if weight == 0 {
 		w.stats.Empty++
@@ -96,7 +124,7 @@ func (w *worker) count(weight float64) {
 	w.stats.SumSquares += float64(weight * weight)
 }
 
-func (w *worker) vertex() [3]float64 {
+func (w *Worker) vertex() [3]float64 {
 	r := &w.generator.config.Target
 	v := [3]float64{r.CentreXM, r.CentreYM, r.CentreZM}
 	if r.SigmaXM > 0 {
@@ -111,7 +139,7 @@ func (w *worker) vertex() [3]float64 {
 	return v
 }
 
-func (w *worker) accidentals(truth *event.Truth) {
+func (w *Worker) accidentals(truth *event.Truth) {
 	a := &w.generator.config.Accidentals
 	expected := a.mean()
 	if expected == 0 {
@@ -125,7 +153,7 @@ func (w *worker) accidentals(truth *event.Truth) {
 
 // produce draws the initial state and the masses of the reaction's products,
 // and returns the event's weight.
-func (w *worker) produce() float64 {
+func (w *Worker) produce() float64 {
 	if w.generator.config.Weighted {
 		w.stats.Attempts++
 		return w.weighted()
@@ -149,9 +177,12 @@ func (w *worker) produce() float64 {
 }
 
 // unweighted redraws until an event is accepted, and returns its weight.
-func (w *worker) unweighted(fraction func() float64) float64 {
+func (w *Worker) unweighted(fraction func() float64) float64 {
 	bound := w.plan.bound
-	for range MaxAttempts {
+	for draw := range MaxAttempts {
+		if w.stopped(draw) {
+			return 0
+		}
 		w.stats.Attempts++
 		f := fraction()
 		if u := w.stream.Uniform(); float64(u*bound) >= f {
@@ -170,8 +201,11 @@ func (w *worker) unweighted(fraction func() float64) float64 {
 
 // energy draws the initial state of a given rate: redrawn below the threshold
 // and by the curve.
-func (w *worker) energy() bool {
-	for range MaxAttempts {
+func (w *Worker) energy() bool {
+	for draw := range MaxAttempts {
+		if w.stopped(draw) {
+			return false
+		}
 		w.state = w.generator.source.draw(&w.stream)
 		if !(w.state.m > w.plan.threshold) {
 			continue
@@ -187,7 +221,7 @@ func (w *worker) energy() bool {
 
 // fraction draws an event of the channel, the initial state included, and
 // returns its weight as a fraction of its ceiling.
-func (w *worker) fraction() float64 {
+func (w *Worker) fraction() float64 {
 	if w.plan.channel.Energy.Kind != PhaseSpaceRate {
 		if !w.energy() {
 			return 0
@@ -205,7 +239,7 @@ func (w *worker) fraction() float64 {
 // times branching fractions, over the flux factor for PhaseSpaceRate, and for a
 // given rate over a spread of energies divided by the mean weight at this
 // energy, so that the mean weight is the rate.
-func (w *worker) weighted() float64 {
+func (w *Worker) weighted() float64 {
 	w.state = w.generator.source.draw(&w.stream)
 	p := w.plan
 	if !(w.state.m > p.threshold) {
@@ -228,7 +262,7 @@ func (w *worker) weighted() float64 {
 
 // drawProducts draws the masses of the reaction's products and returns the
 // weight.
-func (w *worker) drawProducts() float64 {
+func (w *Worker) drawProducts() float64 {
 	p := w.plan
 	weight := p.root.draw(&w.stream, p.nodes, w.state.m, w.masses, &w.spaces[0])
 	if p.angle != nil && weight > 0 {
@@ -241,7 +275,7 @@ func (w *worker) drawProducts() float64 {
 
 // decay gives the products their directions and lets them decay. It returns
 // false where a decay used its attempts up.
-func (w *worker) decay() bool {
+func (w *Worker) decay() bool {
 	p := w.plan
 	ps := &w.spaces[0]
 	var first *momentum.Three
@@ -265,7 +299,7 @@ func (w *worker) decay() bool {
 }
 
 // store moves the points of a group to their rows.
-func (w *worker) store(g *group) {
+func (w *Worker) store(g *group) {
 	for k, row := range g.rows {
 		w.momenta[row] = w.points[k]
 	}
@@ -273,7 +307,7 @@ func (w *worker) store(g *group) {
 
 // decayOf lets one particle decay: the daughters follow phase space times line
 // shapes times the density at the mass that the particle has, by redrawing.
-func (w *worker) decayOf(row int, g *group, ps *PhaseSpace) bool {
+func (w *Worker) decayOf(row int, g *group, ps *PhaseSpace) bool {
 	m := w.masses[row]
 	if g.density != nil {
 		return w.shapedDecay(row, g, ps)
@@ -296,9 +330,12 @@ func (w *worker) decayOf(row int, g *group, ps *PhaseSpace) bool {
 
 // shapedDecay is a decay with a density: made at rest, accepted by the density
 // and then carried along.
-func (w *worker) shapedDecay(row int, g *group, ps *PhaseSpace) bool {
+func (w *Worker) shapedDecay(row int, g *group, ps *PhaseSpace) bool {
 	m := w.masses[row]
-	for range MaxAttempts {
+	for draw := range MaxAttempts {
+		if w.stopped(draw) {
+			return false
+		}
 		if !w.redraw(g, ps, m) {
 			return false
 		}
@@ -320,12 +357,15 @@ func (w *worker) shapedDecay(row int, g *group, ps *PhaseSpace) bool {
 }
 
 // redraw draws the masses of a decay's daughters until they are accepted.
-func (w *worker) redraw(g *group, ps *PhaseSpace, m float64) bool {
+func (w *Worker) redraw(g *group, ps *PhaseSpace, m float64) bool {
 	if g.sharp && len(g.rows) == 2 {
 		return ps.drawMasses(&w.stream, m) > 0
 	}
 	ceiling := g.ceiling(w.plan.nodes, m)
-	for range MaxAttempts {
+	for draw := range MaxAttempts {
+		if w.stopped(draw) {
+			return false
+		}
 		weight := g.draw(&w.stream, w.plan.nodes, m, w.masses, ps)
 		if w.stream.Uniform()*ceiling < weight {
 			return true
@@ -347,7 +387,7 @@ func carry(p momentum.Four, mass float64, body momentum.Four, m float64) momentu
 // helicityAxis is the direction of a particle in its parent's rest frame, seen
 // from its own rest frame: minus the direction in which the parent flies off
 // there.
-func (w *worker) helicityAxis(row int) momentum.Three {
+func (w *Worker) helicityAxis(row int) momentum.Three {
 	parent := w.state.total
 	if k := w.plan.nodes[row].parent; k >= 0 {
 		parent = w.momenta[k]
@@ -365,7 +405,7 @@ func (w *worker) helicityAxis(row int) momentum.Three {
 
 // write appends the particles of the event, and returns the four-momentum of
 // the initial state, with the spectator.
-func (w *worker) write(vertex [3]float64, truth *event.Truth) momentum.Four {
+func (w *Worker) write(vertex [3]float64, truth *event.Truth) momentum.Four {
 	p := w.plan
 	base := len(truth.Number)
 	for i := range p.nodes {
@@ -401,7 +441,7 @@ func (w *worker) write(vertex [3]float64, truth *event.Truth) momentum.Four {
 	return w.state.total.Add(spectator)
 }
 
-func (w *worker) spectatorMass() float64 {
+func (w *Worker) spectatorMass() float64 {
 	if f, ok := w.generator.config.Initial.(FixedTarget); ok && f.Motion != nil {
 		return f.Motion.SpectatorMassGeV
 	}
@@ -410,7 +450,7 @@ func (w *worker) spectatorMass() float64 {
 
 // decayPoint is where the particle of a row decays: its origin moved by
 // p/m times c times its age.
-func (w *worker) decayPoint(truth *event.Truth, row int, mass float64) [3]float64 {
+func (w *Worker) decayPoint(truth *event.Truth, row int, mass float64) [3]float64 {
 	p := truth.Momentum[row].P
 	length := 0.0
 	if age := truth.ProperTimeS[row]; age > 0 {

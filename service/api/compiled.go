@@ -7,6 +7,8 @@ import (
 	"slices"
 	"strings"
 
+	"google.golang.org/protobuf/proto"
+
 	"example.org/kinegate/kinematics/fault"
 	"example.org/kinegate/kinematics/particle"
 	"example.org/kinegate/kinematics/selection"
@@ -61,25 +63,36 @@ func (c *compiledSelection) largestReply(limits blockLimits, detail selection.De
 // could be read.
 func readSelection(text string, table *particle.Table) (*kinegatev1.Selection, *compiledSelection, fault.List) {
 	m := &kinegatev1.Selection{}
+	var c *compiledSelection
+	err := readFile(text, m, func() (err error) {
+		c, err = compile(m, table)
+		return err
+	})
+	return m, c, faultsOf(err)
+}
+
+// readFile reads the text of a file into a message and compiles that. The error is a
+// fault.List of what is wrong with the text and with what it says, each with its place,
+// or whatever else compiling returns.
+func readFile(text string, m proto.Message, compile func() error) error {
 	positions, textFaults := strictyaml.Unmarshal([]byte(text), m)
 	var faults fault.List
 	for _, f := range textFaults {
 		faults = append(faults, fault.New(fault.Invalid, f.Field, "", "").Because(f.Message).At(f.Line, f.Column))
 	}
-	c, err := compile(m, table)
-	if err != nil {
-		for _, f := range beyond(faults, faultsOf(err)) {
-			at := positions.Find(f.Field)
-			faults = append(faults, f.At(at.Line, at.Column))
-		}
+	err := compile()
+	found := faultsOf(err)
+	if err != nil && len(found) == 0 {
+		return err
 	}
-	if len(faults) > 0 {
-		slices.SortStableFunc(faults, func(a, b *fault.Error) int {
-			return cmp.Or(cmp.Compare(a.Line, b.Line), cmp.Compare(a.Column, b.Column))
-		})
-		return m, nil, faults
+	for _, f := range beyond(faults, found) {
+		at := positions.Find(f.Field)
+		faults = append(faults, f.At(at.Line, at.Column))
 	}
-	return m, c, nil
+	slices.SortStableFunc(faults, func(a, b *fault.Error) int {
+		return cmp.Or(cmp.Compare(a.Line, b.Line), cmp.Compare(a.Column, b.Column))
+	})
+	return faults.Err()
 }
 
 // faultsOf is the list of faults that an error holds.

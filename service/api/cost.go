@@ -21,7 +21,7 @@ func Cost(request any) int {
 	switch m := request.(type) {
 	case *kinegatev1.JudgeBlockRequest:
 		return min(1+len(m.GetBlock().GetObjectClasses())/rowsPerShare, SlotShares)
-	case *kinegatev1.ListOpenChannelsRequest, *kinegatev1.TraceDalitzBoundaryRequest:
+	case *kinegatev1.ListOpenChannelsRequest, *kinegatev1.TraceDalitzBoundaryRequest, *kinegatev1.MeasureBoundRequest:
 		return SlotShares
 	}
 	return 1

@@ -82,6 +82,7 @@ type Services struct {
 	deps       Deps
 	particle   *particleService
 	gate, bulk *selectionService
+	generation *generationService
 }
 
 // New returns the services.
@@ -113,6 +114,8 @@ func New(deps Deps) (*Services, error) {
 	}
 	s := &Services{deps: deps, particle: newParticleService(deps.Table, standard)}
 	s.gate, s.bulk = newSelectionServices(deps)
+	// Making events is bulk work on either listener.
+	s.generation = &generationService{deps: deps, turns: s.bulk.turns}
 	return s, nil
 }
 
@@ -129,6 +132,7 @@ func (s *Services) register(r grpc.ServiceRegistrar, selections *selectionServic
 	kinegatev1.RegisterDecayServiceServer(r, &decayService{table: s.deps.Table})
 	kinegatev1.RegisterPhotonServiceServer(r, &photonService{table: s.deps.Table})
 	kinegatev1.RegisterSelectionServiceServer(r, selections)
+	kinegatev1.RegisterGenerationServiceServer(r, s.generation)
 	kinegatev1.RegisterInfoServiceServer(r, &infoService{deps: s.deps})
 }
 
