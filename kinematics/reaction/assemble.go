@@ -41,6 +41,7 @@ func assemble(
 	if inclusive && len(initial) > 0 {
 		r.Remainder = r.remainder(t)
 	}
+	r.final = r.finalStates()
 	return r, nil
 }
 

@@ -99,15 +99,15 @@ type Channel struct {
 func Describe(r *Reaction, in InitialState) (Channel, error) {
 	const op = "reaction.Describe"
 	c := Channel{Frame: in.Frame(), Remarks: r.remarks()}
-	nominal, lightest, known := r.finalStates()
-	c.Nominal.Particles, c.Lightest.Particles = nominal, lightest
-	c.Widened = !sameParticles(nominal, lightest)
+	final := &r.final
+	c.Nominal.Particles, c.Lightest.Particles = final.nominal, final.lightest
+	c.Widened = final.widened
 	switch len(r.Initial) {
 	case 0:
 		return Channel{}, fault.New(fault.Invalid, "reaction", r.String(), "").In(op).
 			Because("the left side is not stated")
 	case 1:
-		return c.ofDecay(r, in, known)
+		return c.ofDecay(r, in)
 	}
 	first, second := &r.Initial[0], &r.Initial[1]
 	if in.Kind != Unstated {
@@ -123,16 +123,16 @@ func Describe(r *Reaction, in InitialState) (Channel, error) {
 	} else if second.Mass == 0 {
 		c.Remarks = append(c.Remarks, "a massless target is never at rest: the threshold needs an initial state")
 	}
-	if !known {
+	if !final.known {
 		c.Remarks = append(c.Remarks, "no X that the laws allow was found among the particles of the table")
 		return c, nil
 	}
 	g, variable := in.geometry(first.Mass, second.Mass)
-	c.hold(&c.Nominal, &g, variable, shares(first, second, nominal))
+	c.hold(&c.Nominal, &g, variable, final.nominalShares)
 	c.Lightest = c.Nominal
 	if c.Widened {
-		c.Lightest.Particles = lightest
-		c.hold(&c.Lightest, &g, variable, shares(first, second, lightest))
+		c.Lightest.Particles = final.lightest
+		c.hold(&c.Lightest, &g, variable, final.lightestShares)
 	}
 	c.judge(len(r.Top) == 1 && !r.Inclusive, in.Kind != Unstated)
 	return c, nil
@@ -220,14 +220,14 @@ func stateOf(nominal, lightest num.Side, heavier bool) State {
 }
 
 // ofDecay holds a decay against its parent's mass.
-func (c *Channel) ofDecay(r *Reaction, in InitialState, known bool) (Channel, error) {
+func (c *Channel) ofDecay(r *Reaction, in InitialState) (Channel, error) {
 	const op = "reaction.Describe"
 	if in.Kind != Unstated {
 		return Channel{}, fault.New(fault.Invalid, "initial_state", "given", "none for a decay").In(op).
 			Because("a decay starts from its parent's mass")
 	}
 	c.Frame = "rest frame of the parent"
-	if !known {
+	if !r.final.known {
 		c.Remarks = append(c.Remarks, "no X that the laws allow was found among the particles of the table")
 		return *c, nil
 	}
@@ -248,35 +248,6 @@ func (c *Channel) ofDecay(r *Reaction, in InitialState, known bool) (Channel, er
 		c.State = OpenThroughWidth
 	}
 	return *c, nil
-}
-
-// finalStates returns the particles of the nominal and of the lightest final state; it is
-// false for an inclusive reaction without a known X.
-func (r *Reaction) finalStates() (nominal, lightest []particle.Particle, known bool) {
-	for _, n := range r.Top {
-		nominal = append(nominal, r.Products[n].Particle)
-		lightest = r.lightest(lightest, n)
-	}
-	if !r.Inclusive {
-		return nominal, lightest, true
-	}
-	if r.Remainder == nil || len(r.Remainder.Lightest) == 0 {
-		return nominal, lightest, false
-	}
-	return append(nominal, r.Remainder.Lightest...), append(lightest, r.Remainder.Lightest...), true
-}
-
-// lightest adds what a product may be at least: itself if it is sharp or no decay is
-// stated, otherwise its daughters.
-func (r *Reaction) lightest(list []particle.Particle, n int) []particle.Particle {
-	p := &r.Products[n]
-	if len(p.Daughters) == 0 || p.Particle.Sharp(particle.SharpWidth) {
-		return append(list, p.Particle)
-	}
-	for _, d := range p.Daughters {
-		list = r.lightest(list, d)
-	}
-	return list
 }
 
 // remarks collects what the particles' flags say.
@@ -311,17 +282,4 @@ func massesOf(list []particle.Particle) []float64 {
 		masses[i] = list[i].Mass
 	}
 	return masses
-}
-
-// sameParticles reports whether two lists hold the same particles in the same order.
-func sameParticles(a, b []particle.Particle) bool {
-	if len(a) != len(b) {
-		return false
-	}
-	for i := range a {
-		if a[i].Number != b[i].Number {
-			return false
-		}
-	}
-	return true
 }

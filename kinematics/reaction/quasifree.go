@@ -62,8 +62,8 @@ func BoundNucleon(t *particle.Table, r *Reaction, nucleus particle.Particle, fer
 	if !(fermi >= 0 && fermi <= maxFermi) {
 		return q, fault.Number("fermi_momentum_gev", fermi, ">= 0 and <= "+fault.Text(maxFermi)).In(op)
 	}
-	final, _, known := r.finalStates()
-	if !known {
+	final := r.final.nominal
+	if !r.final.known {
 		return q, fault.New(fault.Invalid, "reaction", r.String(), "products, or X that the table's particles can be").In(op)
 	}
 	spectator, err := spectatorOf(t, &r.Initial[1], &nucleus)

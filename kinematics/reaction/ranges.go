@@ -28,14 +28,14 @@ func (c Collision) FinalState(masses ...float64) (FinalState, error) {
 		return FinalState{}, fault.New(fault.Invalid, "products", strconv.Itoa(len(masses)), "2 to 8 products").In(op)
 	}
 	for i, m := range masses {
-		if err := checkSize(op, "products["+strconv.Itoa(i)+"].mass_gev", m); err != nil {
-			return FinalState{}, err
+		if checkSize(op, "", m) != nil {
+			return FinalState{}, checkSize(op, "products["+strconv.Itoa(i)+"].mass_gev", m)
 		}
 	}
-	if err := c.closed(op, masses...); err != nil {
-		return FinalState{}, err
-	}
 	over := c.over(masses...)
+	if over.Sign() < 0 {
+		return FinalState{}, c.closed(op, masses...)
+	}
 	return FinalState{
 		collision: c, masses: append([]float64(nil), masses...), over: over,
 		excess: over.Div(c.sys.W.Add(breakup.Sum(masses...))),

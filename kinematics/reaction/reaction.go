@@ -30,6 +30,8 @@ type Reaction struct {
 	Decays []Decay
 	// Remainder is what is left for X; nil unless Inclusive with a left side.
 	Remainder *Remainder
+
+	final finalStates
 }
 
 // Product is one product of a reaction.
