@@ -58,7 +58,7 @@ func PairEnergyFromSqrtS(sqrtSGeV, massGeV float64) (PairEnergy, error) {
 	if err := first(notNegative(op, "sqrt_s_gev", sqrtSGeV), positive(op, "mass_gev", massGeV)); err != nil {
 		return PairEnergy{}, err
 	}
-	half := sqrtSGeV / 2
+	half := float64(sqrtSGeV / 2) // to the compiler a product, which may not be fused
 	above := num.Sum2(half, -massGeV).DivFloat(massGeV)
 	ratio := num.Quo2(half, massGeV)
 	if !(ratio.Hi <= 1e50) {

@@ -4,6 +4,7 @@
 package plot
 
 import (
+	"bytes"
 	"fmt"
 	"image/color"
 	"io"
@@ -189,7 +190,17 @@ func (p *Picture) Write(w io.Writer, extension string) error {
 	if err := p.draw(draw.New(sheet)); err != nil {
 		return err
 	}
-	_, err := sheet.WriteTo(w)
+	if extension == ".png" {
+		_, err := sheet.WriteTo(w)
+		return err
+	}
+	var picture bytes.Buffer
+	if _, err := sheet.WriteTo(&picture); err != nil {
+		return err
+	}
+	// Letters of the same widths where the first are not installed.
+	_, err := w.Write(bytes.ReplaceAll(picture.Bytes(), []byte("font-family:Liberation Sans;"),
+		[]byte("font-family:Liberation Sans,Arial,Helvetica,sans-serif;")))
 	return err
 }
 

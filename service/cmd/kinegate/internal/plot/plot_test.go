@@ -67,7 +67,7 @@ func TestWriteSVGHoldsEveryText(t *testing.T) {
 		t.Fatal(err)
 	}
 	for _, text := range []string{
-		"a title", "across", "upwards", "tick", "broken", "dotted", "ring", "a long text", "upright", "level", "one", "noted", "stroke-dasharray",
+		"a title", "across", "upwards", "tick", "broken", "dotted", "ring", "a long text", "upright", "level", "one", "noted", "stroke-dasharray", "Arial",
 	} {
 		if !strings.Contains(b.String(), text) {
 			t.Errorf("%q is missing", text)
