@@ -35,9 +35,10 @@ func rangeBodiesOf(r *reaction.Reaction, c *reaction.Channel) *rangeBodies {
 		return nil
 	}
 	b := &rangeBodies{kind: kind, masses: topMasses(r, kind), numbers: r.Top}
+	b.names, b.sets = make([]string, 0, len(r.Top)+1), make([]reaction.Subset, 0, len(r.Top)+1)
 	for i, number := range r.Top {
 		b.names = append(b.names, r.Products[number].Name)
-		b.sets = append(b.sets, reaction.SubsetOf(i))
+		b.sets = append(b.sets, 1<<i)
 	}
 	if r.Inclusive {
 		n := len(b.masses)
@@ -88,7 +89,8 @@ func (b *rangeBodies) named(set reaction.Subset) ([]string, bool) {
 // transferForm is one squared momentum transfer in the core's form.
 type transferForm struct {
 	initial reaction.Initial
-	places  []int // in the products of the right side; that after the last is X
+	// places are those in the right side as a set; that after the last is X.
+	places uint64
 }
 
 // maxTransfers bounds the squared momentum transfers of one request.
@@ -106,15 +108,16 @@ func transferForms(
 	if r.Inclusive {
 		bodies++
 	}
-	var forms []transferForm
 	if len(asked) == 0 {
-		for _, initial := range []reaction.Initial{reaction.FromBeam, reaction.FromTarget} {
+		forms := make([]transferForm, 0, 2*bodies)
+		for _, initial := range [...]reaction.Initial{reaction.FromBeam, reaction.FromTarget} {
 			for i := range bodies {
-				forms = append(forms, transferForm{initial, []int{i}})
+				forms = append(forms, transferForm{initial, 1 << i})
 			}
 		}
 		return forms, nil
 	}
+	forms := make([]transferForm, 0, len(asked))
 	f := &former{}
 	for i, pair := range asked {
 		at := index("momentum_transfers", i)
@@ -128,8 +131,11 @@ func transferForms(
 		default:
 			f.need(at+".initial", strconv.Itoa(int(pair.GetInitial())), "INITIAL_PARTICLE_BEAM or INITIAL_PARTICLE_TARGET")
 		}
-		form.places = f.places(at+".products", table, r, pair.GetProducts())
-		if n := len(form.places); n == 0 || n == bodies {
+		places := f.places(at+".products", table, r, pair.GetProducts())
+		for _, place := range places {
+			form.places |= 1 << place
+		}
+		if n := len(places); n == 0 || n == bodies {
 			f.need(at+".products", strconv.Itoa(n)+" products", "some of the products, not all")
 		}
 		forms = append(forms, form)
@@ -201,9 +207,7 @@ func limitsOf(m *kinegatev1.DescribeReactionResponse, r *reaction.Reaction, c *r
 		m.CentreOfMass.FinalMomentumGev = &limits[0].RestMomentum.Max
 	}
 	m.SubsetMasses = subsetMasses(&final, b)
-	for _, t := range transfers {
-		m.MomentumTransfers = append(m.MomentumTransfers, transferLimits(&final, b, t))
-	}
+	m.MomentumTransfers = transferLimits(&final, b, transfers)
 	if volume && !r.Inclusive {
 		m.PhaseSpaceVolume, m.Remarks = volumeMessage(&final, len(b.masses), m.GetRemarks())
 	}
@@ -212,13 +216,26 @@ func limitsOf(m *kinegatev1.DescribeReactionResponse, r *reaction.Reaction, c *r
 	}
 }
 
+// productLimitMessages are the messages of one product, made in one piece.
+type productLimitMessages struct {
+	limits                                     kinegatev1.ProductLimits
+	restEnergy, restMomentum, energy, momentum kinegatev1.EnergyRange
+	angle                                      kinegatev1.AngleRange
+}
+
+// productLimits converts where one product can go.
 func productLimits(name string, number int, mass float64, l *breakup.Limits) *kinegatev1.ProductLimits {
-	return &kinegatev1.ProductLimits{
-		Product: name, Number: int32Of(number), MassGev: mass,
-		CentreOfMassEnergy: energyRange(l.RestEnergy), CentreOfMassMomentum: energyRange(l.RestMomentum),
-		LaboratoryEnergy: energyRange(l.Energy), LaboratoryMomentum: energyRange(l.Momentum),
-		LaboratoryAngle: angleRange(l.Angle),
+	m := &productLimitMessages{}
+	into := func(e *kinegatev1.EnergyRange, r breakup.Range) *kinegatev1.EnergyRange {
+		e.MinGev, e.MaxGev = r.Min, r.Max
+		return e
 	}
+	m.angle.MinRad, m.angle.MaxRad = l.Angle.Min, l.Angle.Max
+	m.limits.Product, m.limits.Number, m.limits.MassGev = name, int32Of(number), mass
+	m.limits.CentreOfMassEnergy, m.limits.CentreOfMassMomentum = into(&m.restEnergy, l.RestEnergy), into(&m.restMomentum, l.RestMomentum)
+	m.limits.LaboratoryEnergy, m.limits.LaboratoryMomentum = into(&m.energy, l.Energy), into(&m.momentum, l.Momentum)
+	m.limits.LaboratoryAngle = &m.angle
+	return &m.limits
 }
 
 // subsetMasses are the ranges of the mass of every proper set of two or more bodies, and
@@ -239,20 +256,44 @@ func subsetMasses(final *reaction.FinalState, b *rangeBodies) []*kinegatev1.Subs
 	return list
 }
 
-func transferLimits(final *reaction.FinalState, b *rangeBodies, form transferForm) *kinegatev1.MomentumTransferLimits {
-	m := &kinegatev1.MomentumTransferLimits{
-		Initial: kinegatev1.InitialParticle(form.initial) + kinegatev1.InitialParticle_INITIAL_PARTICLE_BEAM,
+// transferLimits are the ends of the squared momentum transfers asked for. The messages
+// are made in one piece, as they are many. Since momentum is conserved, t(beam, some) is
+// t(target, all others), and is then taken over.
+func transferLimits(final *reaction.FinalState, b *rangeBodies, forms []transferForm) []*kinegatev1.MomentumTransferLimits {
+	messages := make([]kinegatev1.MomentumTransferLimits, len(forms))
+	list := make([]*kinegatev1.MomentumTransferLimits, len(forms))
+	all := reaction.Subset(1<<len(b.masses) - 1)
+	sets := make([]reaction.Subset, len(forms))
+forms:
+	for i, form := range forms {
+		m := &messages[i]
+		list[i] = m
+		m.Initial = kinegatev1.InitialParticle(form.initial) + kinegatev1.InitialParticle_INITIAL_PARTICLE_BEAM
+		var set reaction.Subset
+		for place := range b.names {
+			if form.places>>place&1 == 0 {
+				continue
+			}
+			set |= b.sets[place]
+			if m.Products == nil {
+				m.Products = b.names[place : place+1 : place+1] // shared where it stays the only one
+			} else {
+				m.Products = append(m.Products, b.names[place])
+			}
+		}
+		sets[i] = set
+		for k := range i {
+			if forms[k].initial != form.initial && sets[k] == all&^set {
+				m.TForwardGev2, m.TBackwardGev2 = messages[k].TForwardGev2, messages[k].TBackwardGev2
+				continue forms
+			}
+		}
+		// The forms name some of the bodies and not all: these always have ends of t.
+		if t, err := final.Transfer(form.initial, set); err == nil {
+			m.TForwardGev2, m.TBackwardGev2 = t.Forward, t.Backward
+		}
 	}
-	var set reaction.Subset
-	for _, place := range form.places {
-		set |= b.sets[place]
-		m.Products = append(m.Products, b.names[place])
-	}
-	// The forms name some of the bodies and not all: these always have ends of t.
-	if t, err := final.Transfer(form.initial, set); err == nil {
-		m.TForwardGev2, m.TBackwardGev2 = t.Forward, t.Backward
-	}
-	return m
+	return list
 }
 
 // volumeMessage gives the volume of phase space, or a remark where there is none.
