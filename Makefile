@@ -43,7 +43,11 @@ generate: ## make the Go code of the protos again, with pinned tools
 	.ci/generate
 
 .PHONY: bench
-bench: ## run the benchmarks (BENCH=pattern)
+bench: ## measure the promises about speed, as ratios with their limits (BENCHFLAGS="--json --runs 3")
+	go run ./service/bench $(BENCHFLAGS)
+
+.PHONY: microbench
+microbench: ## run the Go benchmarks (BENCH=pattern)
 	go test -run '^$$' -bench '$(BENCH)' -benchmem ./...
 
 .PHONY: image
