@@ -53,6 +53,9 @@ const serviceConfig = `{
         {"service": "kinegate.v1.ParticleService"}, {"service": "kinegate.v1.ReactionService"},
         {"service": "kinegate.v1.DecayService"}, {"service": "kinegate.v1.PhotonService"},
         {"service": "kinegate.v1.InfoService"},
+        {"service": "kinegate.v1.GenerationService", "method": "CheckGeneration"},
+        {"service": "kinegate.v1.GenerationService", "method": "CheckDetector"},
+        {"service": "kinegate.v1.GenerationService", "method": "MeasureBound"},
         {"service": "kinegate.v1.SelectionService", "method": "CheckSelection"},
         {"service": "kinegate.v1.SelectionService", "method": "JudgeBlock"}
       ],
@@ -63,7 +66,13 @@ const serviceConfig = `{
         "retryableStatusCodes": ["UNAVAILABLE"]
       }
     },
-    {"name": [{"service": "kinegate.v1.SelectionService", "method": "Judge"}], "waitForReady": true}
+    {
+      "name": [
+        {"service": "kinegate.v1.GenerationService", "method": "GenerateEvents"},
+        {"service": "kinegate.v1.SelectionService", "method": "Judge"}
+      ],
+      "waitForReady": true
+    }
   ]
 }`
 
@@ -77,6 +86,8 @@ type Client struct {
 	Decays kinegatev1.DecayServiceClient
 	// Photons answers for processes with real photons and for fields of photons.
 	Photons kinegatev1.PhotonServiceClient
+	// Generation makes simulated events; ReadEvents reads its blocks.
+	Generation kinegatev1.GenerationServiceClient
 	// Selections checks selections and judges events; Judge is the better way to
 	// its stream.
 	Selections kinegatev1.SelectionServiceClient
@@ -132,6 +143,7 @@ func NewClient(conn *grpc.ClientConn) *Client {
 		Reactions:  kinegatev1.NewReactionServiceClient(conn),
 		Decays:     kinegatev1.NewDecayServiceClient(conn),
 		Photons:    kinegatev1.NewPhotonServiceClient(conn),
+		Generation: kinegatev1.NewGenerationServiceClient(conn),
 		Selections: kinegatev1.NewSelectionServiceClient(conn),
 		Info:       kinegatev1.NewInfoServiceClient(conn),
 		conn:       conn,
