@@ -302,7 +302,7 @@ class _Pump:
             async with self._target.aio_channel(self._target.gate_address) as channel:
                 error = await self._run(channel)
             self.protocol.fail_if_hopeless(error, self._target.gate_address, time.monotonic())
-            if self.protocol.done:
+            if self.protocol.done():
                 return
             moved = error is None or self.protocol.waiting_count < before
             failures = 0 if moved else failures + 1
@@ -345,7 +345,7 @@ class _Pump:
         while True:
             async with self._changed:
                 now = time.monotonic()
-                if self.protocol.half_close:
+                if self.protocol.half_close():
                     break
                 frame = self.protocol.outgoing(now)
                 if frame is None:

@@ -13,7 +13,7 @@ FIELD_INVALID reaction
 from __future__ import annotations
 
 from dataclasses import dataclass, field
-from typing import TYPE_CHECKING, Final
+from typing import TYPE_CHECKING, Any, Final
 
 import grpc
 from google.rpc import error_details_pb2, status_pb2
@@ -167,10 +167,10 @@ _KINDS: Final[Mapping[grpc.StatusCode, type[ServerError]]] = {
 
 def from_rpc(error: grpc.RpcError, address: str) -> ServerError:
     """Turn the failure of a call to a server into an exception of this package."""
-    call: grpc.Call = error  # type: ignore[assignment]  # every RpcError of a call is a Call
-    code = call.code()
-    reason, metadata, violations = _details(call.trailing_metadata())
-    message = call.details() or code.name
+    call: Any = error  # every RpcError of a call is a Call too
+    code: grpc.StatusCode = call.code() or grpc.StatusCode.UNKNOWN
+    reason, metadata, violations = _details(call.trailing_metadata() or ())
+    message: str = call.details() or code.name
     if not reason and code in (grpc.StatusCode.DEADLINE_EXCEEDED, grpc.StatusCode.UNAVAILABLE):
         message = f"no answer from a server at {address} ({message}); does it run there?"
     return _KINDS.get(code, ServerError)(

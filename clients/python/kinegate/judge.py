@@ -112,7 +112,6 @@ class Protocol:
         """Blocks that may be on their way or taken by nobody yet."""
         return AHEAD + (self._credit.block_count if self._credit else 1)
 
-    @property
     def done(self) -> bool:
         """Every block was answered and no more will come."""
         return self._finished and not self._waiting
@@ -173,7 +172,6 @@ class Protocol:
             return selection_pb2.JudgeRequest(heartbeat=beat)
         return None
 
-    @property
     def half_close(self) -> bool:
         """Nothing more will be sent on this connection."""
         return self._finished and self._credit is not None and self._sent == len(self._waiting)
@@ -244,7 +242,7 @@ class Protocol:
         """Raise where another try would not help, or none has helped for too long."""
         if error is not None and is_final(error):
             raise error
-        if not self.done and now - self._progress > self.settings.patience:
+        if not self.done() and now - self._progress > self.settings.patience:
             why = error or "the stream ended"
             raise StreamBroken(
                 f"no verdict from {address} for {self.settings.patience:g} s: {why}"

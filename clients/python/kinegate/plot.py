@@ -177,7 +177,7 @@ def _axes(axes: Any, height: float = 4.0) -> Any:
 
 
 def _right(channels: Sequence[Any]) -> float:
-    return 1.08 * max(c.threshold for c in channels)
+    return float(1.08 * max(c.threshold for c in channels))
 
 
 def _beam_energy(channels: OpenChannels) -> float | None:

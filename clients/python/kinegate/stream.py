@@ -194,7 +194,7 @@ class _Pump:
                 if self._over():
                     return
                 self.protocol.fail_if_hopeless(error, self._target.gate_address, time.monotonic())
-                if self.protocol.done:
+                if self.protocol.done():
                     return
                 # A silent peer may be cut off: a new connection, maybe to another replica.
                 if self._dead:
@@ -245,7 +245,7 @@ class _Pump:
         while True:
             with self._changed:
                 while True:
-                    if self._attempt != attempt or self._over() or self.protocol.half_close:
+                    if self._attempt != attempt or self._over() or self.protocol.half_close():
                         return
                     frame = self.protocol.outgoing(time.monotonic())
                     if frame is not None:

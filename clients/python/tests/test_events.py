@@ -15,6 +15,11 @@ if TYPE_CHECKING:
     from pathlib import Path
 
 
+def _positions(rows: int) -> dict[str, Any]:
+    x, y, z = np.random.default_rng(8).random((3, rows))
+    return {"x_m": x, "y_m": y, "z_m": z}
+
+
 def sample(coordinates: str = "momentum_mass", events: int = 50, *, full: bool = True) -> Events:
     """Invented events of 0 to 6 objects, with every optional part."""
     rng = np.random.default_rng(7)
@@ -30,7 +35,7 @@ def sample(coordinates: str = "momentum_mass", events: int = 50, *, full: bool =
             "covariance": rng.random((n, 6)),
             "beam": kinegate.BeamCandidates(beams, *rng.random((3, beams[-1]))),
             "vertex": kinegate.Vertices(
-                *rng.random((3, events)), covariance_m2=rng.random((events, 6))
+                **_positions(events), covariance_m2=rng.random((events, 6))
             ),
             "vertex_group": kinegate.VertexGroups(
                 np.zeros(n, np.int32), groups, *rng.random((3, groups[-1]))

@@ -1,0 +1,141 @@
+"""The rules of the stream by themselves: credit, heartbeats, order, resume."""
+
+from __future__ import annotations
+
+import numpy as np
+import pytest
+
+from kinegate import Events, Selection, StreamBroken
+from kinegate.judge import DEAD, HEARTBEAT, Protocol, Settings
+from kinegate.v1 import selection_pb2, verdict_pb2
+
+
+def block(n: int = 10) -> Events:
+    ones = np.ones((n, 2))
+    return Events.of(px_gev=ones, py_gev=ones, pz_gev=ones, mass_gev=ones, classes=[2, 3])
+
+
+def opened(digest: str = "d", blocks: int = 3, size: int = 1 << 20) -> selection_pb2.JudgeResponse:
+    credit = selection_pb2.Credit(block_count=blocks, byte_count=size)
+    opening = selection_pb2.JudgeOpened(selection_digest=digest, credit=credit)
+    return selection_pb2.JudgeResponse(opened=opening)
+
+
+def verdict(sequence: int) -> selection_pb2.JudgeResponse:
+    return selection_pb2.JudgeResponse(verdict=verdict_pb2.VerdictBlock(sequence=sequence))
+
+
+def started(blocks: int = 5, first: int = 0) -> Protocol:
+    protocol = Protocol(Settings(Selection.named("s"), first_sequence=first))
+    for _ in range(blocks):
+        protocol.add(block())
+    protocol.connect(0.0)
+    return protocol
+
+
+def sent(protocol: Protocol, now: float = 0.1) -> list[int]:
+    frames = []
+    while (frame := protocol.outgoing(now)) is not None:
+        frames.append(frame.block.sequence)
+    return frames
+
+
+def test_nothing_is_sent_before_the_opening_is_answered() -> None:
+    protocol = started()
+    assert protocol.outgoing(5.0) is None
+    protocol.incoming(opened(), 0.1)
+    assert sent(protocol) == [0, 1, 2]
+
+
+def test_a_verdict_returns_the_credit_of_its_block() -> None:
+    protocol = started()
+    protocol.incoming(opened(), 0.1)
+    assert sent(protocol) == [0, 1, 2]
+    protocol.incoming(verdict(0), 0.2)
+    assert sent(protocol) == [3]
+    assert not protocol.done()
+
+
+def test_credit_of_bytes_holds_too() -> None:
+    protocol = started()
+    size = block().to_message(1).ByteSize()
+    protocol.incoming(opened(blocks=5, size=2 * size + 1), 0.1)
+    assert sent(protocol) == [0, 1]
+
+
+def test_heartbeat_after_silence_only() -> None:
+    protocol = started(blocks=1, first=4)
+    protocol.incoming(opened(), 0.0)
+    assert sent(protocol, 0.0) == [4]
+    assert protocol.outgoing(HEARTBEAT * 0.9) is None
+    frame = protocol.outgoing(HEARTBEAT)
+    assert frame is not None
+    assert frame.heartbeat.answered_sequence == 3
+    assert protocol.outgoing(HEARTBEAT * 1.5) is None
+
+
+def test_silence_and_a_stuck_server_are_told() -> None:
+    protocol = started()
+    assert not protocol.dead(DEAD)
+    assert protocol.dead(DEAD + 0.1)
+    protocol.incoming(opened(), 5.0)
+    assert not protocol.dead(5.1)
+    beat = selection_pb2.Heartbeat(oldest_pending_s=100)
+    protocol.incoming(selection_pb2.JudgeResponse(heartbeat=beat), 5.0)
+    assert protocol.dead(5.1)
+
+
+def test_resume_begins_with_the_first_unanswered() -> None:
+    protocol = started()
+    protocol.incoming(opened("the digest"), 0.1)
+    sent(protocol)
+    protocol.incoming(verdict(0), 0.2)
+    opening = protocol.connect(1.0).open
+    assert opening.first_sequence == 1
+    assert opening.selection.named.selection_digest == "the digest"
+    protocol.incoming(opened("the digest"), 1.1)
+    assert sent(protocol, 1.1) == [1, 2, 3]
+
+
+def test_another_digest_is_refused_on_resume() -> None:
+    protocol = started()
+    protocol.incoming(opened("one"), 0.1)
+    protocol.connect(1.0)
+    with pytest.raises(StreamBroken, match="digest"):
+        protocol.incoming(opened("another"), 1.1)
+
+
+@pytest.mark.parametrize("sequence", [1, -1, 7])
+def test_gaps_and_repeats_of_the_server_break_the_stream(sequence: int) -> None:
+    protocol = started()
+    protocol.incoming(opened(), 0.1)
+    sent(protocol)
+    with pytest.raises(StreamBroken, match="where 0 was due"):
+        protocol.incoming(verdict(sequence), 0.2)
+
+
+def test_verdict_on_what_was_not_sent_breaks_the_stream() -> None:
+    protocol = started()
+    protocol.incoming(opened(), 0.1)
+    with pytest.raises(StreamBroken):
+        protocol.incoming(verdict(0), 0.2)
+
+
+def test_nothing_is_sent_to_a_server_that_leaves() -> None:
+    protocol = started()
+    protocol.incoming(opened(), 0.1)
+    assert protocol.outgoing(0.1) is not None
+    protocol.incoming(selection_pb2.JudgeResponse(draining=selection_pb2.Draining()), 0.2)
+    assert protocol.outgoing(0.3) is None
+
+
+def test_end() -> None:
+    protocol = started(blocks=1)
+    protocol.incoming(opened(), 0.1)
+    protocol.finish()
+    assert not protocol.half_close()
+    assert sent(protocol) == [0]
+    assert protocol.half_close()
+    assert not protocol.done()
+    protocol.incoming(verdict(0), 0.2)
+    assert protocol.done()
