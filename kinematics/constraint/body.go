@@ -142,19 +142,19 @@ func packedIndex(a, b int) int { return a*(5-a)/2 + b }
 
 // place sets the parameters to where the unknowns x stand.
 func (b *body) place(x []float64) {
-	for a := range b.count {
-		t := b.start[a]
-		if a < 3 {
-			for c := range a {
-				if w := b.spread[a][c]; w != 0 {
-					t += float64(w * x[b.vars[c]])
-				}
-			}
-			t += float64(b.spread[a][a] * x[b.vars[a]])
-		} else {
-			t += x[b.vars[a]]
+	switch b.count {
+	case 1:
+		b.theta[0] = b.start[0] + float64(b.spread[0][0]*x[b.vars[0]])
+	case maxParameters:
+		for a, v := range b.vars {
+			b.theta[a] = b.start[a] + x[v]
 		}
-		b.theta[a] = t
+	default:
+		l := &b.spread
+		x0, x1, x2 := x[b.vars[0]], x[b.vars[1]], x[b.vars[2]]
+		b.theta[0] = b.start[0] + float64(l[0][0]*x0)
+		b.theta[1] = b.start[1] + float64(l[1][0]*x0) + float64(l[1][1]*x1)
+		b.theta[2] = b.start[2] + float64(l[2][0]*x0) + float64(l[2][1]*x1) + float64(l[2][2]*x2)
 	}
 }
 

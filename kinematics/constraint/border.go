@@ -18,7 +18,7 @@ type border struct {
 
 // independent is the least pivot, of a matrix with entries of about one, with which the
 // border is solved without pivoting.
-const independent = 0x1p-24
+const independent = 0x1p-40
 
 // factor copies the rows of the border from a system, first its variables, then its
 // constraints, applies the scales and factors it. It returns false if a block is not
@@ -28,22 +28,25 @@ func (b *border) factor(s *system, first int) bool {
 	n, k := m.n, b.constraints
 	variables := n - k
 	scale := s.scale[first:]
-	for i := range k {
+	inner, outer := scale[:variables], scale[variables:]
+	for i, di := range outer {
 		row := from.entries[(first+variables+i)*from.n+first:][:variables+i+1]
-		di := scale[variables+i]
-		for u, v := range row[:variables] {
-			m.entries[(k+u)*n+i] = v * di * scale[u]
+		at := k*n + i
+		for u, v := range row[:len(inner)] {
+			m.entries[at] = v * di * inner[u]
+			at += n
 		}
-		to := m.entries[i*n:][:i+1]
-		for j, v := range row[variables:] {
-			to[j] = -v * di * scale[variables+j]
+		row = row[len(inner):]
+		to := m.entries[i*n:][:len(row)]
+		for j, v := range row {
+			to[j] = -v * di * outer[j]
 		}
 	}
-	for u := range variables {
+	for u, du := range inner {
 		row := from.entries[(first+u)*from.n+first:][:u+1]
-		to := m.entries[(k+u)*n+k:][:u+1]
+		to := m.entries[(k+u)*n+k:][:len(row)]
 		for w, v := range row {
-			to[w] = v * scale[u] * scale[w]
+			to[w] = v * du * inner[w]
 		}
 	}
 	if !m.cholesky(0, k, independent) {

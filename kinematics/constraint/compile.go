@@ -33,8 +33,9 @@ type Problem struct {
 	// z is the variable of the vertex, or none.
 	z      int
 	vertex VertexZ
-	// sign is that of the object of each variable but the vertex.
-	sign []float64
+	// owner is the object of each variable but the vertex, sign that object's sign.
+	owner []int
+	sign  []float64
 	// weight is 1 for a measured variable and 0 for an unmeasured one.
 	weight []float64
 	// unmeasured is the number of variables of weight 0.
@@ -194,11 +195,11 @@ func (p *Problem) number(owners union, vertex VertexZ) {
 		p.parts[i].number(false, &p.weight)
 	}
 	p.unmeasured = len(p.weight) - p.measured
-	p.sign = make([]float64, len(p.weight))
+	p.sign, p.owner = make([]float64, len(p.weight)), make([]int, len(p.weight))
 	for i := range p.parts {
 		r := &p.parts[i]
 		for _, v := range r.vars[:r.count] {
-			p.sign[v] = r.sign
+			p.sign[v], p.owner[v] = r.sign, i
 		}
 	}
 	if repointed && vertex != VertexKnown {

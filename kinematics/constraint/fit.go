@@ -40,9 +40,11 @@ func (f *Fitter) Fit() Result {
 
 // chiSquare is the square of the distance from the measurement.
 func (f *Fitter) chiSquare() float64 {
-	sum := 0.0
-	for v, w := range f.problem.weight {
-		sum += float64(w * f.x[v] * f.x[v])
+	p := f.problem
+	x := f.x[:p.measured]
+	sum := dot(x, x)
+	if p.z != none {
+		sum += float64(p.weight[p.z] * f.x[p.z] * f.x[p.z])
 	}
 	return sum
 }
@@ -159,43 +161,31 @@ const (
 func (f *Fitter) search() bool {
 	p := f.problem
 	copy(f.before, f.x)
-	gain, squares := 0.0, 0.0
-	for v, w := range p.weight {
-		gain += float64(w * f.x[v] * f.step[v])
+	gain := dot(f.x[:p.measured], f.step) - dot(f.next, f.residual)
+	if p.z != none {
+		gain += float64(p.weight[p.z] * f.x[p.z] * f.step[p.z])
 	}
-	for k, r := range f.residual {
-		gain -= float64(f.next[k] * r)
-		pull := r / f.sigma[k]
-		squares += float64(pull * pull)
-	}
+	squares := f.squares()
 	if gain > 0.5*f.penalty*squares && squares > 0 {
 		f.penalty = math.Max(2*f.penalty, 4*gain/squares)
 	}
 	slope := gain - float64(f.penalty*squares)
 	start := f.merit()
-	length := f.reach()
-	for length > shortest {
-		for v, d := range f.step {
-			f.x[v] = f.before[v] + float64(length*d)
-		}
+	for length := f.reach(); length > shortest; length /= 3 {
+		copy(f.x, f.before)
+		subtract(f.x, -length, f.step)
 		f.evaluate()
 		if got := f.merit(); got <= start+float64(sufficient*length*slope) || -slope < 1e-10 {
 			copy(f.multiplier, f.next)
 			return true
 		}
-		length /= 3
 	}
 	return false
 }
 
 // merit is what a step lowers.
 func (f *Fitter) merit() float64 {
-	sum := f.chiSquare() / 2
-	for k, r := range f.residual {
-		pull := r / f.sigma[k]
-		sum += float64(f.next[k]*r) + float64(f.penalty/2*pull*pull)
-	}
-	return sum
+	return f.chiSquare()/2 + dot(f.next, f.residual) + float64(f.penalty/2*f.squares())
 }
 
 // reach is the part of the step, at most one, that leaves every size above zero: none

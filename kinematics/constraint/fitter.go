@@ -142,23 +142,28 @@ func (f *Fitter) balance() {
 	}
 }
 
-// of returns the component of a vector.
-func (c component) of(v *vector) float64 {
+// parts says that the component is one entry of a vector plus a factor times another.
+func (c component) parts() (one, other int, factor float64) {
 	switch c {
 	case balanceX:
-		return v[0]
 	case balanceY:
-		return v[1]
+		one = 1
 	case balanceZ:
-		return v[2]
+		one = 2
 	case balanceEnergy:
-		return v[3]
+		one = 3
 	case balanceMinus:
-		return v[3] - v[2]
+		return 3, 2, -1
 	case balancePlus:
-		return v[3] + v[2]
+		return 3, 2, 1
 	}
-	return math.NaN()
+	return one, one, 0
+}
+
+// of returns the component of a vector.
+func (c component) of(v *vector) float64 {
+	one, other, factor := c.parts()
+	return v[one] + float64(factor*v[other])
 }
 
 // square returns the mass squared.
@@ -211,11 +216,8 @@ func (f *Fitter) pull(multiplier []float64) {
 // that moves the constraints by one standard deviation. The pulls are set.
 func (f *Fitter) stationarity() float64 {
 	p := f.problem
-	for i := range f.bodies {
-		part := &p.parts[i]
-		for _, v := range part.vars[:part.count] {
-			f.gradient[v] = float64(p.weight[v]*f.x[v]) + f.pulls[i].on(&f.columns[v])
-		}
+	for v, i := range p.owner {
+		f.gradient[v] = float64(p.weight[v]*f.x[v]) + f.pulls[i].on(&f.columns[v])
 	}
 	if p.z != none {
 		g := float64(p.weight[p.z] * f.x[p.z])

@@ -135,12 +135,7 @@ func (f *Fitter) writeConstraints() {
 	p, m := f.problem, &f.system.matrix
 	for k, c := range p.balance {
 		row := m.row(p.variables + k)
-		sum := 0.0
-		for v, sign := range p.sign {
-			a := sign * c.of(&f.columns[v])
-			row[v] = a
-			sum += float64(p.weight[v] * a * a)
-		}
+		f.writeBalance(row, c)
 		if p.z != none {
 			a := 0.0
 			for i := range f.bodies {
@@ -149,26 +144,44 @@ func (f *Fitter) writeConstraints() {
 				}
 			}
 			row[p.z] = a
-			sum += float64(p.weight[p.z] * a * a)
 		}
-		f.squared[k] = sum
+		f.squared[k] = f.variance(row)
 	}
 	for k := range p.masses {
 		row := m.row(p.variables + len(p.balance) + k)
 		left, right := &p.masses[k].left, &p.masses[k].right
 		f.writeSide(row, left, &f.sums[k][0], 2)
 		f.writeSide(row, right, &f.sums[k][1], -2)
-		sum := 0.0
-		for _, s := range [2]*side{left, right} {
-			for _, v := range s.vars {
-				sum += float64(p.weight[v] * row[v] * row[v])
-			}
-		}
-		if p.z != none {
-			sum += float64(p.weight[p.z] * row[p.z] * row[p.z])
-		}
-		f.squared[len(p.balance)+k] = sum
+		f.squared[len(p.balance)+k] = f.variance(row)
 	}
+}
+
+// writeBalance writes the derivatives of a component in all variables but the vertex.
+func (f *Fitter) writeBalance(row []float64, c component) {
+	sign := f.problem.sign
+	columns := f.columns[:len(sign)]
+	row = row[:len(sign)]
+	one, other, factor := c.parts()
+	if factor == 0 {
+		for v, s := range sign {
+			row[v] = s * columns[v][one&3]
+		}
+		return
+	}
+	for v, s := range sign {
+		column := &columns[v]
+		row[v] = s * (column[one&3] + float64(factor*column[other&3]))
+	}
+}
+
+// variance is that of a constraint with the given derivatives.
+func (f *Fitter) variance(row []float64) float64 {
+	p := f.problem
+	sum := dot(row[:p.measured], row)
+	if p.z != none {
+		sum += float64(p.weight[p.z] * row[p.z] * row[p.z])
+	}
+	return sum
 }
 
 func (f *Fitter) writeSide(row []float64, s *side, sum *vector, twice float64) {
@@ -200,15 +213,17 @@ func (f *Fitter) rescale() {
 		}
 		s.scale[p.variables+k] = 1 / f.sigma[k]
 	}
+	inverse := s.scale[p.variables:]
 	for v := p.measured; v < p.variables; v++ {
 		s.scale[v] = 1
 		if p.weight[v] > 0 {
 			continue
 		}
-		sum := 0.0
-		for k := range f.residual {
-			a := m.entries[(p.variables+k)*m.n+v] * s.scale[p.variables+k]
+		sum, at := 0.0, p.variables*m.n+v
+		for _, scale := range inverse {
+			a := m.entries[at] * scale
 			sum += float64(a * a)
+			at += m.n
 		}
 		if sum > 0 {
 			s.scale[v] = 1 / math.Sqrt(sum)
@@ -258,13 +273,7 @@ func (s *system) eliminate(c *cluster) bool {
 			m.forward(c.first*(m.n+1), m.entries[r*m.n+c.first:][:c.size])
 		}
 	}
-	for i, r := range c.rows {
-		left := m.entries[r*m.n+c.first:][:c.size]
-		out := m.entries[r*m.n:][:r+1]
-		for _, q := range c.rows[:i+1] {
-			out[q] -= dot(left, m.entries[q*m.n+c.first:])
-		}
-	}
+	m.gram(c)
 	return true
 }
 
@@ -284,9 +293,7 @@ func (f *Fitter) solve() {
 		if !s.plain {
 			m.forward(c.first*(m.n+1), part)
 		}
-		for _, r := range c.rows {
-			b[r] -= dot(part, m.entries[r*m.n+c.first:])
-		}
+		m.collect(c, part, b)
 	}
 	s.scaleRight(p.measured)
 	s.border.solve(b[p.measured:])
@@ -294,9 +301,7 @@ func (f *Fitter) solve() {
 	for i := range p.clusters {
 		c := &p.clusters[i]
 		part := b[c.first:][:c.size]
-		for _, r := range c.rows {
-			subtract(part, b[r], m.entries[r*m.n+c.first:])
-		}
+		m.distribute(c, part, b)
 		if !s.plain {
 			m.backward(c.first*(m.n+1), part)
 		}
