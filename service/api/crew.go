@@ -59,8 +59,9 @@ func (c *crew) judge(ctx context.Context, block *event.Block, late func() bool, 
 		if !c.turns.try() {
 			break
 		}
+		member := c.members[i+1]
 		together.Go(func() {
-			if err := Contain(func() error { j.help(ctx, c.members[i+1]); return nil }); err != nil {
+			if err := Contain(func() error { j.help(ctx, member); return nil }); err != nil {
 				errs <- err
 			}
 		})

@@ -53,7 +53,7 @@ func decodeFrame(wire []byte, m protoreflect.Message) error {
 	fields := m.Descriptor().Fields()
 	for len(wire) > 0 {
 		number, kind, head := protowire.ConsumeTag(wire)
-		if head < 0 {
+		if head < 0 || !number.IsValid() {
 			return errFrame
 		}
 		length := protowire.ConsumeFieldValue(number, kind, wire[head:])
@@ -89,7 +89,7 @@ func borrowColumns(wire []byte, m protoreflect.Message) error {
 	fields := m.Descriptor().Fields()
 	for len(wire) > 0 {
 		number, kind, head := protowire.ConsumeTag(wire)
-		if head < 0 {
+		if head < 0 || !number.IsValid() {
 			return errFrame
 		}
 		length := protowire.ConsumeFieldValue(number, kind, wire[head:])

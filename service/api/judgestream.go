@@ -106,6 +106,11 @@ func (j *judgeStream) run() error {
 	if !end.readOver {
 		end.read = <-read
 	}
+	if end.read != nil && Explain(end.read).Reason != CallCancelled && j.connection.Close != nil {
+		// The status may queue behind replies that nobody takes, and then the caller,
+		// whose blocks nobody reads any more, would wait for ever.
+		time.AfterFunc(brokenGrace, j.connection.Close)
+	}
 	return end.read
 }
 

@@ -72,10 +72,12 @@ func (j *judgeStream) write() error {
 			if !more {
 				return nil
 			}
+			// The credit goes back first: the caller may use it before Send returns. The
+			// block's memory is free already.
+			j.ledger.answer(r.sequence, r.bytes)
 			if err := j.send(&Encoded{Data: r.data}); err != nil {
 				return err
 			}
-			j.ledger.answer(r.sequence, r.bytes)
 			j.observe(r)
 			beat.Reset(heartbeatInterval)
 			continue
