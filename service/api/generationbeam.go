@@ -41,7 +41,7 @@ func (g *generationForm) initialState(path string, m *kinegatev1.GenerationIniti
 		g.config.Initial = generation.CollidingBeams{
 			First:    generation.Beam{MassGeV: r.Initial[0].Mass, Spectrum: first},
 			Second:   generation.Beam{MassGeV: r.Initial[1].Mass, Spectrum: second},
-			AngleRad: angleOf(kind.TwoBeams.AngleBetweenBeamsRad),
+			AngleRad: angleOf(kind.TwoBeams.AngleBetweenBeamsRad != nil, kind.TwoBeams.GetAngleBetweenBeamsRad()),
 		}
 	case *kinegatev1.GenerationInitialState_Total:
 		here := path + ".total"
@@ -198,12 +198,13 @@ func (g *generationForm) backscatter(path string, m *kinegatev1.BackscatterSpect
 		return b, false
 	}
 	b = generation.LaserBackscatter{
-		BeamGeV: total, MassGeV: lepton.Mass, LightGeV: m.GetLightEnergyGev(), AngleRad: angleOf(m.AngleBetweenBeamsRad),
+		BeamGeV: total, MassGeV: lepton.Mass, LightGeV: m.GetLightEnergyGev(),
+		AngleRad: angleOf(m.AngleBetweenBeamsRad != nil, m.GetAngleBetweenBeamsRad()),
 		LowGeV: m.GetLowGev(), HighGeV: m.GetHighGev(),
 	}
 	if _, err := photon.NewBackscatter(b.BeamGeV, b.MassGeV, b.LightGeV, b.AngleRad); err != nil {
 		g.found(err, func(field string) string {
-			if field == "photon_energy_gev" {
+			if field == corePhotonEnergy {
 				field = "light_energy_gev"
 			}
 			return join(path, field)
