@@ -98,7 +98,7 @@ func (e PairEnergy) AnnihilationDifferential(cosTheta float64) float64 {
 // luminosity. AnnihilationWithin keeps the mass; the two differ by about m^2/s over
 // 1 - z.
 //
-// Domain: sqrtSGeV > 0 and finite, 0 <= cosMax < 1. Accuracy: 4e-15 on top of the
+// Domain: 1e-100 <= sqrtSGeV <= 1e100, 0 <= cosMax < 1. Accuracy: 4e-15 on top of the
 // constants; the logarithm is at least 2 z, so the difference loses at most a factor
 // 3. Left out: higher orders, the weak interaction, the mass.
 func AnnihilationMassless(sqrtSGeV, cosMax float64) (float64, error) {

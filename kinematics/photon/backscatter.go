@@ -51,7 +51,7 @@ type Backscatter struct {
 // beamEnergyGeV and mass massGeV and light of photonEnergyGeV, whose directions differ
 // by angleRad (pi, the double nearest to it included, is head on).
 //
-// Domain: beamEnergyGeV >= massGeV > 0, photonEnergyGeV > 0, all finite,
+// Domain: beamEnergyGeV >= massGeV > 0, photonEnergyGeV > 0, all in range,
 // 0 <= angleRad <= pi, and (s - m^2)/m^2 <= 1e50. Head on with equal momenta the
 // laboratory is the centre of mass, every photon has the same energy and there is no
 // spectrum: that is refused, as are momenta equal to one part in 2^90.

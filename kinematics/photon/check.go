@@ -1,25 +1,24 @@
 package photon
 
 import (
-	"math"
-
 	"example.org/kinegate/kinematics/fault"
 )
 
-// positive returns a fault unless x is finite and > 0.
+// Magnitudes of energies, masses, densities and lengths: beyond them products of the
+// formulas would leave the range of doubles.
+const (
+	leastMagnitude    = 1e-100
+	greatestMagnitude = 1e100
+)
+
+// positive returns a fault unless 1e-100 <= x <= 1e100.
 func positive(op, field string, x float64) error {
-	if x > 0 && !math.IsInf(x, 1) {
-		return nil
-	}
-	return fault.Number(field, x, "> 0 and finite").In(op)
+	return within(op, field, x, leastMagnitude, greatestMagnitude, "1e-100 to 1e100")
 }
 
-// notNegative returns a fault unless x is finite and >= 0.
+// notNegative returns a fault unless 0 <= x <= 1e100.
 func notNegative(op, field string, x float64) error {
-	if x >= 0 && !math.IsInf(x, 1) {
-		return nil
-	}
-	return fault.Number(field, x, ">= 0 and finite").In(op)
+	return within(op, field, x, 0, greatestMagnitude, "0 to 1e100")
 }
 
 // within returns a fault unless low <= x <= high; allowed says so in words.

@@ -14,7 +14,7 @@ type Compton struct {
 }
 
 // NewCompton returns the scattering of a photon of photonEnergyGeV on a particle of
-// massGeV at rest. Domain: photonEnergyGeV >= 0, massGeV > 0, both finite, energy at
+// massGeV at rest. Domain: photonEnergyGeV >= 0, massGeV > 0, both in range, energy at
 // most 1e100 masses.
 func NewCompton(photonEnergyGeV, massGeV float64) (Compton, error) {
 	const op = "photon.NewCompton"

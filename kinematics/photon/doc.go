@@ -18,4 +18,7 @@
 // and any field strong enough for several laser photons to act at once. Pairs near
 // threshold lack the Coulomb attraction of their two charges, which matters for
 // velocities of order alpha.
+//
+// In range, for an energy, a mass, a density or a length, means 1e-100 to 1e100 in its
+// unit, or 0 where 0 is allowed; functions that return an error refuse others.
 package photon

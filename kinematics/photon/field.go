@@ -48,7 +48,7 @@ type Absorption struct {
 // condition number, which grows like m^2/(E k T) for photons far below the peak of
 // absorption on a black body. A kappa below 1e-290 per metre may be rounded to 0.
 //
-// Domain: 0 < energies <= 1e30 GeV, massGeV > 0, distanceMetre >= 0, all finite. A
+// Domain: 0 < energies <= 1e30 GeV, massGeV > 0, distanceMetre >= 0, all in range. A
 // photon below threshold, an empty field and a field at 0 K absorb nothing: PerMetre
 // and OpticalDepth are 0 and the mean free path is +Inf. Left out: higher orders,
 // creation of two pairs (which takes over above about 1e20 eV on the microwave

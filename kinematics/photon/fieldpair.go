@@ -13,7 +13,7 @@ import "example.org/kinegate/kinematics/num"
 // nucleus are left out, and near the threshold in an electron's field the cross-section
 // is very small.
 //
-// Domain: both masses > 0 and finite. Accuracy: one rounding.
+// Domain: both masses in range. Accuracy: one rounding.
 //
 // Source: conservation of energy and momentum; R. D. Evans, The Atomic Nucleus (1955),
 // chapter 24.

@@ -50,7 +50,7 @@ type FlightPoint struct {
 //
 // and unpolarised.
 //
-// Domain: EnergyGeV >= MassGeV > 0, PhotonEnergyGeV > 0, all finite;
+// Domain: EnergyGeV >= MassGeV, masses and energies within 1e-100 to 1e100 GeV;
 // 0 <= angles <= pi, any finite azimuth. Accuracy: 6e-15 times the condition number.
 // Rates in the laboratory carry the flux factor 1 - beta cos(alpha) on top of the
 // cross-section. Left out: see KleinNishinaDifferential; polarisation.
@@ -113,7 +113,7 @@ func (f Flight) TotalBarn() (float64, error) {
 func (f Flight) check(op string) error {
 	return first(
 		positive(op, "mass_gev", f.MassGeV),
-		within(op, "energy_gev", f.EnergyGeV, f.MassGeV, math.MaxFloat64, ">= mass_gev and finite"),
+		within(op, "energy_gev", f.EnergyGeV, f.MassGeV, greatestMagnitude, "mass_gev to 1e100"),
 		positive(op, "photon_energy_gev", f.PhotonEnergyGeV),
 		within(op, "angle_between_beams_rad", f.AngleBetweenBeamsRad, 0, math.Pi, "0 <= angle <= pi"),
 	)

@@ -51,7 +51,7 @@ func PairEnergyFromExcess(excess float64) (PairEnergy, error) {
 //
 //	s/(4 m^2) - 1 = ((sqrt(s) - 2 m)/(2 m))(sqrt(s)/(2 m) + 1)
 //
-// taken of exactly these doubles. Domain: sqrtSGeV >= 0, massGeV > 0, both finite, and
+// taken of exactly these doubles. Domain: sqrtSGeV >= 0, massGeV > 0, both in range, and
 // sqrt(s)/(2 m) <= 1e50; an excess between -1e-250 and 1e-250 counts as 0.
 func PairEnergyFromSqrtS(sqrtSGeV, massGeV float64) (PairEnergy, error) {
 	const op = "photon.PairEnergyFromSqrtS"
@@ -77,7 +77,7 @@ func PairEnergyFromSqrtS(sqrtSGeV, massGeV float64) (PairEnergy, error) {
 //	s/(4 m^2) = (w1/m) (w2/m) sin(angle/2)^2
 //
 // The sine is rounded once, which near threshold is the uncertainty of the excess;
-// head on it is exactly 1. Domain: energies and mass > 0 and finite,
+// head on it is exactly 1. Domain: energies and mass in range,
 // 0 <= angleRad <= pi, ratio at most 1e100.
 func PairEnergyFromPhotons(firstGeV, secondGeV, angleRad, massGeV float64) (PairEnergy, error) {
 	const op = "photon.PairEnergyFromPhotons"
@@ -113,7 +113,7 @@ func PairEnergyFromLorentzFactor(gamma float64) (PairEnergy, error) {
 
 // PairEnergyFromKinetic returns the energy of a particle of kinetic energy kineticGeV
 // and mass massGeV that meets its antiparticle at rest: the excess is T/(2 m), so slow
-// particles lose nothing. Domain: kineticGeV >= 0, massGeV > 0, both finite, and
+// particles lose nothing. Domain: kineticGeV >= 0, massGeV > 0, both in range, and
 // T/m <= 1e100; T/m below 2e-250 counts as 0.
 func PairEnergyFromKinetic(kineticGeV, massGeV float64) (PairEnergy, error) {
 	const op = "photon.PairEnergyFromKinetic"

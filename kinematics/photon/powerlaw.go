@@ -15,7 +15,8 @@ import (
 type PowerLaw struct {
 	// Index is p, -20 to 20: positive for a falling spectrum.
 	Index float64
-	// MinGeV and MaxGeV are the limits, 0 < MinGeV < MaxGeV.
+	// MinGeV and MaxGeV are the limits, 1e-100 <= MinGeV < MaxGeV <= 1e30 with
+	// (MaxGeV/MinGeV)^(|p| + 1) <= e^600.
 	MinGeV, MaxGeV float64
 	// PerCubicMetre is N, the number of photons per cubic metre between the limits, 0
 	// or above.
@@ -23,6 +24,10 @@ type PowerLaw struct {
 }
 
 const steepestIndex = 20
+
+// widestPower bounds the logarithm of the powers of max/min, which stay within the
+// range of doubles.
+const widestPower = 600
 
 func (p PowerLaw) check(op string) error {
 	if err := first(
@@ -35,6 +40,9 @@ func (p PowerLaw) check(op string) error {
 	}
 	if p.MinGeV >= p.MaxGeV {
 		return fault.Number("max_gev", p.MaxGeV, "> min_gev").In(op)
+	}
+	if (math.Abs(p.Index)+1)*num.Log(p.MaxGeV/p.MinGeV) > widestPower {
+		return fault.Number("max_gev", p.MaxGeV, "(max/min)^(|index| + 1) <= e^600").In(op)
 	}
 	return nil
 }

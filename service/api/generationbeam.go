@@ -200,7 +200,7 @@ func (g *generationForm) backscatter(path string, m *kinegatev1.BackscatterSpect
 	b = generation.LaserBackscatter{
 		BeamGeV: total, MassGeV: lepton.Mass, LightGeV: m.GetLightEnergyGev(),
 		AngleRad: angleOf(m.AngleBetweenBeamsRad != nil, m.GetAngleBetweenBeamsRad()),
-		LowGeV: m.GetLowGev(), HighGeV: m.GetHighGev(),
+		LowGeV:   m.GetLowGev(), HighGeV: m.GetHighGev(),
 	}
 	if _, err := photon.NewBackscatter(b.BeamGeV, b.MassGeV, b.LightGeV, b.AngleRad); err != nil {
 		g.found(err, func(field string) string {

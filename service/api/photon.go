@@ -148,21 +148,31 @@ func cosinesFault(field string, cosines []float64) error {
 	return nil
 }
 
-// maxCosineFault refuses a largest |cosine| that is none.
-func maxCosineFault(field string, c *float64) error {
-	if c == nil || *c >= 0 && *c <= 1 {
-		return nil
+// anglesFault refuses lists of more values than one reply holds, the first cosine that
+// is none, and a largest |cosine| that is none; 0 where it is absent.
+func anglesFault(at string, cosines []float64, maxCosine float64, totals []float64) error {
+	if err := tooMany(at, len(cosines), len(totals)); err != nil {
+		return err
 	}
-	return fault.Number(field, *c, "0 <= max_cosine <= 1")
+	if err := cosinesFault(at+".cosines", cosines); err != nil {
+		return err
+	}
+	if !(maxCosine >= 0 && maxCosine <= 1) {
+		return fault.Number(at+".max_cosine", maxCosine, "0 <= max_cosine <= 1")
+	}
+	return nil
 }
 
 // angleOf is the angle between two beams, head on where it is absent.
-func angleOf(angle *float64) float64 {
-	if angle == nil {
+func angleOf(given bool, angle float64) float64 {
+	if !given {
 		return headOn
 	}
-	return *angle
+	return angle
 }
+
+// corePhotonEnergy is the core's name for the energy of a photon.
+const corePhotonEnergy = "photon_energy_gev"
 
 // restEnergy is sqrt(s) of a pair of mass m each.
 func restEnergy(e photon.PairEnergy, m float64) float64 { return 2 * m * math.Sqrt(e.Ratio()) }

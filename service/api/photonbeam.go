@@ -29,10 +29,10 @@ func (s *photonService) backscatter(
 	if err != nil {
 		return err
 	}
-	b, err := photon.NewBackscatter(total, p.Mass, q.GetLightEnergyGev(), angleOf(q.AngleBetweenBeamsRad))
+	b, err := photon.NewBackscatter(total, p.Mass, q.GetLightEnergyGev(), angleOf(q.AngleBetweenBeamsRad != nil, q.GetAngleBetweenBeamsRad()))
 	if err != nil {
 		return atFields(err, at, map[string]string{
-			"energy_gev": "beam", "beam_energy_gev": "beam", "mass_gev": "particle", "photon_energy_gev": "light_energy_gev",
+			"energy_gev": "beam", "beam_energy_gev": "beam", "mass_gev": "particle", corePhotonEnergy: "light_energy_gev",
 		})
 	}
 	a := &kinegatev1.BackscatterAnswer{
@@ -92,7 +92,7 @@ func spectrum(
 		point, err := pointAt(b, energy, q.GetPolarisation())
 		if err != nil {
 			return atFields(err, at, map[string]string{
-				"photon_energy_gev": path, "circular": "polarisation.circular_degree",
+				corePhotonEnergy: path, "circular": "polarisation.circular_degree",
 				"linear": "polarisation.linear_degree", "beam_helicity": "polarisation.beam_degree",
 			})
 		}

@@ -73,7 +73,7 @@ func comptonAtRest(ctx context.Context, at string, a *kinegatev1.ComptonAnswer, 
 	return each(ctx, len(q.GetTotalsAtPhotonEnergiesGev()), func(i int) error {
 		c, err := photon.NewCompton(q.GetTotalsAtPhotonEnergiesGev()[i], a.GetMassGev())
 		if err != nil {
-			return atFields(err, at, map[string]string{"photon_energy_gev": index("totals_at_photon_energies_gev", i)})
+			return atFields(err, at, map[string]string{corePhotonEnergy: index("totals_at_photon_energies_gev", i)})
 		}
 		a.TotalsBarn = append(a.TotalsBarn, c.TotalBarn())
 		return nil
@@ -90,7 +90,7 @@ func (s *photonService) comptonInFlight(
 	}
 	flight := photon.Flight{
 		EnergyGeV: total, MassGeV: p.Mass,
-		PhotonEnergyGeV: q.GetPhotonEnergyGev(), AngleBetweenBeamsRad: angleOf(q.AngleBetweenBeamsRad),
+		PhotonEnergyGeV: q.GetPhotonEnergyGev(), AngleBetweenBeamsRad: angleOf(q.AngleBetweenBeamsRad != nil, q.GetAngleBetweenBeamsRad()),
 	}
 	paths := map[string]string{"energy_gev": "flight", "mass_gev": "particle"}
 	if a.TotalBarn, err = flight.TotalBarn(); err != nil {
@@ -126,7 +126,7 @@ func (s *photonService) comptonInFlight(
 		flight.PhotonEnergyGeV = q.GetTotalsAtPhotonEnergiesGev()[i]
 		barn, err := flight.TotalBarn()
 		if err != nil {
-			return atFields(err, at, map[string]string{"photon_energy_gev": index("totals_at_photon_energies_gev", i)})
+			return atFields(err, at, map[string]string{corePhotonEnergy: index("totals_at_photon_energies_gev", i)})
 		}
 		a.TotalsBarn = append(a.TotalsBarn, barn)
 		return nil

@@ -82,12 +82,12 @@ func describeBlackBody(m *kinegatev1.DescribePhotonFieldResponse, b photon.Black
 		return err
 	}
 	m.TemperatureK = new(b.TemperatureKelvin * (1 + b.Redshift))
-	if m.GetTemperatureK() == 0 {
-		return nil
-	}
 	peak, err := b.SmallestMeanFreePath(m.GetMassGev())
 	if err != nil {
 		return err
+	}
+	if finite(peak.MeanFreePathMetre) == nil {
+		return nil // at 0 K, and so near to it that nothing is absorbed
 	}
 	m.Strongest = &kinegatev1.StrongestAbsorption{
 		PhotonEnergyGev: peak.PhotonEnergyGeV, MeanFreePathM: peak.MeanFreePathMetre, MeanFreePathKpc: peak.MeanFreePathKiloparsec,

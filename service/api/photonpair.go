@@ -1,7 +1,6 @@
 package api
 
 import (
-	"cmp"
 	"context"
 	"math"
 
@@ -20,11 +19,7 @@ func (s *photonService) pairCreation(
 	if err != nil {
 		return err
 	}
-	if err := cmp.Or(
-		tooMany(at, len(q.GetCosines()), len(q.GetTotalsAtSqrtSGev())),
-		cosinesFault(at+".cosines", q.GetCosines()),
-		maxCosineFault(at+".max_cosine", q.MaxCosine),
-	); err != nil {
+	if err := anglesFault(at, q.GetCosines(), q.GetMaxCosine(), q.GetTotalsAtSqrtSGev()); err != nil {
 		return err
 	}
 	e, err := createdAt(at, q, p.Mass)
@@ -86,7 +81,8 @@ func createdAt(at string, q *kinegatev1.PairCreation, mass float64) (photon.Pair
 	case *kinegatev1.PairCreation_TwoPhotons:
 		two := energy.TwoPhotons
 		e, err = photon.PairEnergyFromPhotons(
-			two.GetFirstEnergyGev(), two.GetSecondEnergyGev(), angleOf(two.AngleBetweenPhotonsRad), mass)
+			two.GetFirstEnergyGev(), two.GetSecondEnergyGev(),
+			angleOf(two.AngleBetweenPhotonsRad != nil, two.GetAngleBetweenPhotonsRad()), mass)
 		return e, atFields(err, at, map[string]string{
 			"first_photon_energy_gev":  "two_photons.first_energy_gev",
 			"second_photon_energy_gev": "two_photons.second_energy_gev",
@@ -132,11 +128,7 @@ func (s *photonService) annihilation(
 	if err != nil {
 		return err
 	}
-	if err := cmp.Or(
-		tooMany(at, len(q.GetCosines()), len(q.GetTotalsAtSqrtSGev())),
-		cosinesFault(at+".cosines", q.GetCosines()),
-		maxCosineFault(at+".max_cosine", q.MaxCosine),
-	); err != nil {
+	if err := anglesFault(at, q.GetCosines(), q.GetMaxCosine(), q.GetTotalsAtSqrtSGev()); err != nil {
 		return err
 	}
 	e, err := annihilatedAt(at, q, p.Mass)
@@ -214,7 +206,7 @@ func (s *photonService) fieldPair(m *kinegatev1.DescribePhotonProcessResponse, q
 	if err != nil {
 		return err
 	}
-	mass := 0.0
+	var mass float64
 	switch target := q.GetTarget().(type) {
 	case *kinegatev1.FieldPairCreation_TargetParticle:
 		t, err := s.named(at+".target_particle", target.TargetParticle)

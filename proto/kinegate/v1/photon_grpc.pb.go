@@ -34,7 +34,9 @@ const (
 // PhotonService answers for processes with real photons. Left out everywhere:
 // higher orders and the radiation of further photons, the weak interaction,
 // structure and resonances (leptons and scalars are points), binding of electrons,
-// and fields so strong that several laser photons act at once.
+// and fields so strong that several laser photons act at once. Energies, masses,
+// densities and lengths lie within 1e-100 to 1e100 in their units, or are 0 where 0 is
+// allowed.
 type PhotonServiceClient interface {
 	// DescribePhotonProcess gives cross-sections, spectra, edges and thresholds of one
 	// process. A photon below a threshold is an answer (a cross-section of 0), not an
@@ -81,7 +83,9 @@ func (c *photonServiceClient) DescribePhotonField(ctx context.Context, in *Descr
 // PhotonService answers for processes with real photons. Left out everywhere:
 // higher orders and the radiation of further photons, the weak interaction,
 // structure and resonances (leptons and scalars are points), binding of electrons,
-// and fields so strong that several laser photons act at once.
+// and fields so strong that several laser photons act at once. Energies, masses,
+// densities and lengths lie within 1e-100 to 1e100 in their units, or are 0 where 0 is
+// allowed.
 type PhotonServiceServer interface {
 	// DescribePhotonProcess gives cross-sections, spectra, edges and thresholds of one
 	// process. A photon below a threshold is an answer (a cross-section of 0), not an

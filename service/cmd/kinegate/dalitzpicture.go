@@ -1,7 +1,6 @@
 package main
 
 import (
-	"fmt"
 	"math"
 
 	"example.org/kinegate/proto/column"
@@ -66,7 +65,7 @@ func dalitzPicture(r *kinegatev1.TraceDalitzBoundaryResponse, bands []string) (*
 			Text: bands[i], Unmarked: true, Side: side,
 		})
 	}
-	return &plot.Picture{Title: fmt.Sprintf("Region of %s", r.GetProcess()), Panels: []plot.Panel{panel}}, nil
+	return &plot.Picture{Title: "Region of " + r.GetProcess(), Panels: []plot.Panel{panel}}, nil
 }
 
 // strokes is the number of strokes that follow each other.

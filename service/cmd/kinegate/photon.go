@@ -236,12 +236,12 @@ func shortEnergy(x float64) string { return trimZeros(quantity.Format(x, quantit
 // cosineSpan is the cosines of a picture, closer together towards the ends: all, or up
 // to the largest asked for. High above the threshold, where nearly everything lies at
 // |cosine| = 1, it leaves these ends out.
-func cosineSpan(maxCosine *float64, sqrtS, threshold float64) []float64 {
+func cosineSpan(maxCosine, sqrtS, threshold float64) []float64 {
 	const points, high, inner = 401, 10, 0.99
 	reach := 1.0
 	switch {
-	case maxCosine != nil && *maxCosine > 0:
-		reach = *maxCosine
+	case maxCosine > 0 && maxCosine < 1:
+		reach = maxCosine
 	case sqrtS > high*threshold:
 		reach = inner
 	}

@@ -64,7 +64,7 @@ func photonAnnihilationCommand(p program) *cobra.Command {
 			}
 			a := reply.GetAnnihilation()
 			threshold := 2 * a.GetMassGev()
-			q.Cosines = cosineSpan(q.MaxCosine, a.GetSqrtSGev(), threshold)
+			q.Cosines = cosineSpan(maxCosine, a.GetSqrtSGev(), threshold)
 			q.TotalsAtSqrtSGev = span(threshold*(1+1e-4), math.Max(10*threshold, 3*a.GetSqrtSGev()), 400, true)
 			if reply, err = e.photonProcess(c.Context(), request); err != nil {
 				return err
@@ -76,7 +76,8 @@ func photonAnnihilationCommand(p program) *cobra.Command {
 	f := c.Flags()
 	f.StringVar(&sqrtS, "sqrt-s", "", "energy in the centre of mass")
 	f.StringVar(&kinetic, "beam-kinetic", "", "kinetic energy of one lepton, the other at rest")
-	f.Float64SliceVar(&cosines, "cosine", nil, "cosine of a photon's angle in the centre of mass at which the cross-section is wanted; may be given several times")
+	f.Float64SliceVar(&cosines, "cosine", nil,
+		"cosine of a photon's angle in the centre of mass at which the cross-section is wanted; may be given several times")
 	f.Float64Var(&maxCosine, "max-cosine", 1, "also give the cross-section with both photons within this |cosine|")
 	picture.flag(c)
 	return c

@@ -2,6 +2,7 @@ package main
 
 import (
 	"fmt"
+	"slices"
 	"strings"
 
 	"github.com/spf13/cobra"
@@ -170,7 +171,7 @@ func backscatterPicture(a *kinegatev1.BackscatterAnswer, q *kinegatev1.LaserBack
 	edge := plot.Ruler{At: a.GetHighestGev() * factor, Text: "edge " + shortEnergy(a.GetHighestGev())}
 	mean := plot.Ruler{At: a.GetMeanGev() * factor, Text: "mean " + shortEnergy(a.GetMeanGev())}
 	// The spectrum falls from its end to 0 at the edge.
-	spectrumX, spectrumY := append(energy[:n:n], energy[n-1]), append(per[:n:n], 0)
+	spectrumX, spectrumY := slices.Concat(energy, energy[n-1:]), slices.Concat(per, []float64{0})
 	panels := []plot.Panel{{
 		X:      x,
 		Y:      plot.Axis{Label: "spectrum (" + perUnit + "/" + unit + ")", Min: 0, Max: 1.1 * largest(per)},

@@ -52,7 +52,7 @@ func photonPairCommand(p program) *cobra.Command {
 			}
 			a := reply.GetPairCreation()
 			if draw {
-				q.Cosines = cosineSpan(q.MaxCosine, a.GetSqrtSGev(), a.GetThresholdSqrtSGev())
+				q.Cosines = cosineSpan(maxCosine, a.GetSqrtSGev(), a.GetThresholdSqrtSGev())
 				q.TotalsAtSqrtSGev = span(a.GetThresholdSqrtSGev(), pairReach(a), 400, true)
 				if reply, err = e.photonProcess(c.Context(), request); err != nil {
 					return err
@@ -73,7 +73,8 @@ func photonPairCommand(p program) *cobra.Command {
 	f.StringVar(&second, "photon2", "", `the same of the second photon, such as "500 nm"`)
 	f.StringVar(&angle, "angle", "", `angle between the directions of the photons, such as "90 deg"; head on if not given`)
 	f.StringVar(&sqrtS, "sqrt-s", "", "energy in the centre of mass, in place of photons")
-	f.Float64SliceVar(&cosines, "cosine", nil, "cosine of the particle's angle in the centre of mass at which the cross-section is wanted; may be given several times")
+	f.Float64SliceVar(&cosines, "cosine", nil,
+		"cosine of the particle's angle in the centre of mass at which the cross-section is wanted; may be given several times")
 	f.Float64Var(&maxCosine, "max-cosine", 1, "also give the cross-section with both particles within this |cosine|")
 	picture.flag(c)
 	return c

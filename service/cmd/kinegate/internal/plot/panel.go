@@ -1,6 +1,7 @@
 package plot
 
 import (
+	"fmt"
 	"image/color"
 
 	"gonum.org/v1/plot"
@@ -97,7 +98,7 @@ func (p *Panel) addCurve(g *plot.Plot, c *Curve) error {
 	for _, part := range c.parts(p.X.Log, p.Y.Log) {
 		l, err := plotter.NewLine(part)
 		if err != nil {
-			return err
+			return fmt.Errorf("curve %q: %w", c.Name, err)
 		}
 		l.LineStyle = c.Stroke.line(c.Heavy)
 		g.Add(l)

@@ -205,7 +205,7 @@ func (p *Picture) Write(w io.Writer, extension string) error {
 }
 
 func (p *Picture) draw(c draw.Canvas) error {
-	paper := c.Rectangle.Path()
+	paper := c.Path()
 	c.SetColor(color.White)
 	c.Fill(paper)
 	row := make([]*plot.Plot, len(p.Panels))
