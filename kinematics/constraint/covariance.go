@@ -115,16 +115,17 @@ func (f *Fitter) MomentumCovariance(first, second int) [4][4]float64 {
 	var out [4][4]float64
 	ok := f.propagate()
 	n := f.problem.variables
-	f.each(first, func(v int, left *vector) {
-		f.each(second, func(w int, right *vector) {
+	left, right := f.derivatives(first), f.derivatives(second)
+	for a, v := range left.vars[:left.count] {
+		for b, w := range right.vars[:right.count] {
 			c := f.covariance.entries[v*n+w]
 			for i := range 4 {
 				for j := range 4 {
-					out[i][j] += float64(left[i] * c * right[j])
+					out[i][j] += float64(left.columns[a][i] * c * right.columns[b][j])
 				}
 			}
-		})
-	})
+		}
+	}
 	if !ok {
 		for i := range out {
 			for j := range out[i] {
@@ -135,17 +136,25 @@ func (f *Fitter) MomentumCovariance(first, second int) [4][4]float64 {
 	return out
 }
 
-// each visits the variables of an object's four-momentum with its derivatives.
-func (f *Fitter) each(object int, visit func(v int, column *vector)) {
+// derivatives are those of an object's four-momentum.
+type derivatives struct {
+	vars    [maxParameters + 1]int
+	columns [maxParameters + 1]vector
+	count   int
+}
+
+func (f *Fitter) derivatives(object int) derivatives {
 	b := &f.bodies[object]
-	for _, v := range b.vars[:b.count] {
-		visit(v, &f.columns[v])
+	d := derivatives{count: b.count}
+	for a, v := range b.vars[:b.count] {
+		d.vars[a], d.columns[a] = v, f.columns[v]
 	}
 	if b.repointed && f.problem.z != none {
-		along := vector{}
-		along.add(f.spreadZ, &b.alongZ)
-		visit(f.problem.z, &along)
+		d.vars[d.count] = f.problem.z
+		d.columns[d.count].add(f.spreadZ, &b.alongZ)
+		d.count++
 	}
+	return d
 }
 
 // VertexZ returns the fitted z of the vertex in metres and its standard deviation, which

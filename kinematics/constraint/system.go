@@ -200,20 +200,34 @@ func (f *Fitter) writeSide(row []float64, s *side, sum *vector, twice float64) {
 const exact = 0x1p-40
 
 // rescale finds the standard deviations of the constraints and the scales of the border.
+// A constraint on unmeasured parameters alone has the standard deviation that the other
+// constraints leave it.
 func (f *Fitter) rescale() {
 	p, s := f.problem, &f.system
-	m := &s.matrix
+	bare := false
 	for k, sum := range f.squared {
 		least := exact * f.total
 		if k >= len(p.balance) {
 			least *= f.total
 		}
+		least *= least
 		if !f.held {
-			f.sigma[k] = math.Sqrt(sum + float64(least*least))
+			f.sigma[k] = math.Sqrt(sum + least)
 		}
 		s.scale[p.variables+k] = 1 / f.sigma[k]
+		bare = bare || sum <= least
 	}
-	inverse := s.scale[p.variables:]
+	if bare && p.unmeasured > 0 && !f.held {
+		f.rescaleBare()
+	}
+	f.rescaleUnmeasured()
+}
+
+// rescaleUnmeasured finds the scales of the unmeasured variables from those of the
+// constraints.
+func (f *Fitter) rescaleUnmeasured() {
+	p, s := f.problem, &f.system
+	m, inverse := &s.matrix, s.scale[p.variables:]
 	for v := p.measured; v < p.variables; v++ {
 		s.scale[v] = 1
 		if p.weight[v] > 0 {
@@ -228,6 +242,31 @@ func (f *Fitter) rescale() {
 		if sum > 0 {
 			s.scale[v] = 1 / math.Sqrt(sum)
 		}
+	}
+}
+
+// rescaleBare finds the standard deviations of constraints on unmeasured variables alone,
+// from the scales that the other constraints give these.
+func (f *Fitter) rescaleBare() {
+	p, s := f.problem, &f.system
+	m, inverse := &s.matrix, s.scale[p.variables:]
+	for k, sum := range f.squared {
+		if sum <= 0.5*f.sigma[k]*f.sigma[k] {
+			inverse[k] = 0
+		}
+	}
+	f.rescaleUnmeasured()
+	for k, scale := range inverse {
+		if scale > 0 {
+			continue
+		}
+		sum := f.sigma[k] * f.sigma[k]
+		for v := p.measured; v < p.variables; v++ {
+			a := m.entries[(p.variables+k)*m.n+v] * s.scale[v]
+			sum += float64(a * a)
+		}
+		f.sigma[k] = math.Sqrt(sum)
+		inverse[k] = 1 / f.sigma[k]
 	}
 }
 
