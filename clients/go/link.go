@@ -94,7 +94,7 @@ func (l *link) openStream(open *kinegatev1.JudgeOpen) (*kinegatev1.JudgeOpened, 
 	}
 	response, err := l.stream.Recv()
 	if err != nil {
-		return nil, err //nolint:wrapcheck // the status is for the caller
+		return nil, err
 	}
 	l.lastSeen.Store(l.now())
 	if response.GetOpened() == nil {
@@ -118,7 +118,7 @@ func (l *link) send(request *kinegatev1.JudgeRequest) error {
 	defer l.sending.Unlock()
 	l.lastSent.Store(l.now())
 	if err := l.stream.Send(request); err != nil && !errors.Is(err, io.EOF) {
-		return err //nolint:wrapcheck // the status is for the caller
+		return err
 	}
 	return nil
 }
@@ -149,7 +149,7 @@ func (s *JudgeStream) receive(l *link) error {
 		case errors.Is(err, io.EOF) && l.draining.Load():
 			return errDraining
 		case err != nil:
-			return err //nolint:wrapcheck // the status is for the caller
+			return err
 		}
 		l.lastSeen.Store(l.now())
 		switch x := response.GetFrame().(type) {

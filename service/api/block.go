@@ -43,7 +43,7 @@ func eventBlock(m *kinegatev1.EventBlock, c *columns) (*event.Block, error) {
 	if x := m.GetVertex(); x != nil {
 		b.Vertex = &event.Vertex{
 			Positions:  c.positions("vertex", x),
-			Covariance: c.covariance("vertex.covariance_m2", x.CovarianceM2),
+			Covariance: c.covariance("vertex.covariance_m2", x.GetCovarianceM2()),
 		}
 	}
 	if x := m.GetVertexGroup(); x != nil {
@@ -51,7 +51,7 @@ func eventBlock(m *kinegatev1.EventBlock, c *columns) (*event.Block, error) {
 			OfObject:   c.int32s("vertex_group.groups", x.GetGroups()),
 			Offsets:    c.int32s("vertex_group.offsets", x.GetOffsets()),
 			Position:   c.positions("vertex_group", x),
-			Covariance: c.covariance("vertex_group.covariance_m2", x.CovarianceM2),
+			Covariance: c.covariance("vertex_group.covariance_m2", x.GetCovarianceM2()),
 		}
 	}
 	if x := m.GetClusterPosition(); x != nil {

@@ -2,6 +2,7 @@ package api
 
 import (
 	"errors"
+	"slices"
 
 	"google.golang.org/grpc/mem"
 	"google.golang.org/protobuf/encoding/protowire"
@@ -103,7 +104,7 @@ func borrowColumns(wire []byte, m protoreflect.Message) error {
 		case d == nil:
 		case d.Kind() == protoreflect.BytesKind && kind == protowire.BytesType:
 			column, _ := protowire.ConsumeBytes(value)
-			m.Set(d, protoreflect.ValueOfBytes(column[:len(column):len(column)]))
+			m.Set(d, protoreflect.ValueOfBytes(slices.Clip(column)))
 		case d.Kind() == protoreflect.MessageKind && kind == protowire.BytesType:
 			content, _ := protowire.ConsumeBytes(value)
 			if err := borrowColumns(content, m.Mutable(d).Message()); err != nil {

@@ -83,7 +83,7 @@ func smallDetector() *kinegatev1.Detector {
 			SplitOff: &kinegatev1.SplitOff{Probability: 0.1, MinShare: 0.1, MaxShare: 0.2, MinAngleRad: 0.1, MaxAngleRad: 0.2},
 		},
 		Tracker: &kinegatev1.Tracker{
-			Theta: theta(), MomentumMinGev: 0.1, Constant: 0.01, AngleSigmaRad: 0.003, Identify: true, Efficiency: proto.Float64(0.9),
+			Theta: theta(), MomentumMinGev: 0.1, Constant: 0.01, AngleSigmaRad: 0.003, Identify: true, Efficiency: new(0.9),
 			Confusions: []*kinegatev1.SpeciesConfusion{{
 				From: kinegatev1.Species_SPECIES_PROTON, To: kinegatev1.Species_SPECIES_PION, Probability: 0.1,
 			}},
@@ -301,7 +301,7 @@ func TestMeasureBound(t *testing.T) {
 	}
 	// A bound a tenth below the largest weight is exceeded now and then; the efficiency
 	// is mean over bound, within five standard deviations of 2000 accepted events.
-	request.Generation.Channels[0].Bound = proto.Float64(0.9 * m.GetLargest())
+	request.Generation.Channels[0].Bound = new(0.9 * m.GetLargest())
 	summary := mustGenerate(t, s, &kinegatev1.GenerateEventsRequest{Generation: request.GetGeneration(), EventCount: 20000}).summary()
 	closeTo(t, "efficiency", summary.GetEfficiency(), m.GetMean()/(0.9*m.GetLargest()), 0.04)
 	if summary.GetOverflowCount() == 0 || summary.GetLargestWeight() <= 1 || len(summary.GetRemarks()) != 1 ||

@@ -45,7 +45,7 @@ func TestGenerationFaults(t *testing.T) {
 		"other beam":       {func(g *kinegatev1.Generation) { g.Channels[1].Reaction = "gamma n -> n pi0" }, codes.InvalidArgument, "channels[1].reaction", "same initial"},
 		"inclusive":        {func(g *kinegatev1.Generation) { g.Channels[1].Reaction = "gamma p -> K+ X" }, codes.Unimplemented, "channels[1].reaction", "no products"},
 		"negative share":   {func(g *kinegatev1.Generation) { g.Channels[1].Fraction = proto.Float64(-1) }, codes.InvalidArgument, "channels[1].fraction", ">= 0"},
-		"bound":            {func(g *kinegatev1.Generation) { g.Channels[0].Bound = proto.Float64(math.NaN()) }, codes.InvalidArgument, "channels[0].bound", "finite"},
+		"bound":            {func(g *kinegatev1.Generation) { g.Channels[0].Bound = new(math.NaN()) }, codes.InvalidArgument, "channels[0].bound", "finite"},
 		"weighted mixture": {func(g *kinegatev1.Generation) { g.Weighted = true }, codes.InvalidArgument, "weighted", "mixture"},
 		"no beam":          {func(g *kinegatev1.Generation) { g.InitialState = nil }, codes.InvalidArgument, "initial_state", "only a decay"},
 		"range":            {func(g *kinegatev1.Generation) { g.InitialState = tagged(2, 1) }, codes.InvalidArgument, "initial_state.beam_on_target.beam.even.max_gev", "low_gev"},
@@ -83,7 +83,7 @@ func TestGenerationFaults(t *testing.T) {
 		}, codes.InvalidArgument, "channels[0].decays[0].vector_to_three", "3 daughters"},
 		"accidentals": {func(g *kinegatev1.Generation) { g.Accidentals.RateHz = 1e12 }, codes.InvalidArgument, "accidentals.rate_hz", "100"},
 		"target":      {func(g *kinegatev1.Generation) { g.Target.LengthM = math.Inf(1) }, codes.InvalidArgument, "target.length_m", "finite"},
-		"detector":    {func(g *kinegatev1.Generation) { g.Detector.Tracker.Efficiency = proto.Float64(1.5) }, codes.InvalidArgument, "detector.tracker.efficiency", "0 to 1"},
+		"detector":    {func(g *kinegatev1.Generation) { g.Detector.Tracker.Efficiency = new(1.5) }, codes.InvalidArgument, "detector.tracker.efficiency", "0 to 1"},
 		"species": {func(g *kinegatev1.Generation) { g.Detector.Tracker.Confusions[0].From = 99 },
 			codes.InvalidArgument, "detector.tracker.confusions[0].from", "contract"},
 	} {

@@ -90,7 +90,7 @@ func (g *generationStream) run(header *kinegatev1.GenerationHeader) error {
 func (g *generationStream) send(m *kinegatev1.GenerateEventsResponse) error {
 	err := g.stream.Send(m)
 	g.lastSent = time.Now()
-	return err //nolint:wrapcheck // it is classed already
+	return err
 }
 
 // fill makes the events of the next block. Where blocks end depends on the events alone,

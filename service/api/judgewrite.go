@@ -106,7 +106,7 @@ func (j *judgeStream) send(m any) error {
 	j.sending.Store(max(1, int64(time.Since(j.start))))
 	err := j.stream.SendMsg(m)
 	j.sending.Store(0)
-	return err //nolint:wrapcheck // it is classed already
+	return err
 }
 
 // observe counts a reply that was sent.

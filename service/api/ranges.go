@@ -284,7 +284,7 @@ forms:
 		sets[i] = set
 		for k := range i {
 			if forms[k].initial != form.initial && sets[k] == all&^set {
-				m.TForwardGev2, m.TBackwardGev2 = messages[k].TForwardGev2, messages[k].TBackwardGev2
+				m.TForwardGev2, m.TBackwardGev2 = messages[k].GetTForwardGev2(), messages[k].GetTBackwardGev2()
 				continue forms
 			}
 		}

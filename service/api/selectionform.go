@@ -215,7 +215,7 @@ func enumForm[To ~uint8, From interface {
 		f.need(at, strconv.Itoa(int(value)), "a value of the contract")
 		return 0
 	}
-	return To(value) //nolint:gosec // values of the contract are small
+	return To(value)
 }
 
 // index is the field path of element i of a list.

@@ -98,7 +98,7 @@ func (w *wire) Read(p []byte) (int, error) {
 	for {
 		n, err := w.Conn.Read(p)
 		if err != nil || !w.silent.Load() {
-			return n, err //nolint:wrapcheck // as it is
+			return n, err
 		}
 	}
 }
@@ -108,7 +108,7 @@ func (w *wire) Write(p []byte) (int, error) {
 	if w.silent.Load() {
 		return len(p), nil
 	}
-	return w.Conn.Write(p) //nolint:wrapcheck // as it is
+	return w.Conn.Write(p)
 }
 
 // TestHistoryAcrossCuts cuts the connection again and again: each event is answered

@@ -24,6 +24,7 @@ type call struct {
 	grpc.ServerStream
 
 	ctx    context.Context //nolint:containedctx // a ServerStream carries its context
+	stream bool            // it may last
 	single bool            // one message and then the end is all that may come
 	method string
 	label  string
@@ -96,7 +97,7 @@ func (c *call) receive(in *incoming) error {
 // SendHeader sends the headers now.
 func (c *call) SendHeader(header metadata.MD) error {
 	c.head()
-	return c.ServerStream.SendHeader(header) //nolint:wrapcheck // as a ServerStream does
+	return c.ServerStream.SendHeader(header)
 }
 
 // head adds the trace to the headers of a call that is going to be answered. Before

@@ -71,7 +71,7 @@ func (codec) Unmarshal(data mem.BufferSlice, v any) error {
 // decode reads the message from its checked wire form.
 func (in *incoming) decode(buffer mem.Buffer) error {
 	if in.borrowed != nil {
-		return in.borrowed.Decode(buffer) //nolint:wrapcheck // the caller names the message
+		return in.borrowed.Decode(buffer)
 	}
 	return proto.Unmarshal(buffer.ReadOnlyData(), in.message) //nolint:wrapcheck // the caller names the message
 }

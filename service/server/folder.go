@@ -143,7 +143,7 @@ func (f *folder) read(path string) (version api.Version, news bool, err error) {
 	f.sums[path] = sum
 	version, err = f.library.Read(string(data))
 	if err != nil {
-		return version, false, err //nolint:wrapcheck // the caller names the file
+		return version, false, err
 	}
 	if owner := f.owners[version.Name()]; owner != "" && owner != path && !f.gone(owner) {
 		return version, false, fault.New(fault.Invalid, "name", version.Name(), "a name that no other file has").

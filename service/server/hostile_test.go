@@ -67,7 +67,7 @@ func hostileFrames(t testing.TB) map[string]struct {
 		"offsets backwards": {wire: change(func(b *kinegatev1.EventBlock) {
 			xs, _ := column.Int32s(b.GetObjectOffsets())
 			for i := range xs {
-				xs[i] = int32(len(xs) - i) //nolint:gosec // small
+				xs[i] = int32(len(xs) - i)
 			}
 			b.ObjectOffsets = column.Int32(xs)
 		}), reject: "object_offsets"},

@@ -24,7 +24,7 @@ func pairSelection() *kinegatev1.Selection {
 		Hypotheses: []*kinegatev1.Hypothesis{{
 			Name: "pi0", Reaction: "pi0 -> gamma gamma",
 			Condition: &kinegatev1.Condition{Window: &kinegatev1.Window{Observable: &kinegatev1.Window_InvariantMass{
-				InvariantMass: &kinegatev1.MassWindow{Products: []string{"gamma[0]", "gamma[1]"}, MinGev: proto.Float64(0.11), MaxGev: proto.Float64(0.16)},
+				InvariantMass: &kinegatev1.MassWindow{Products: []string{"gamma[0]", "gamma[1]"}, MinGev: new(0.11), MaxGev: new(0.16)},
 			}}},
 			Record: []*kinegatev1.Window{{Name: "mass", Observable: &kinegatev1.Window_InvariantMass{
 				InvariantMass: &kinegatev1.MassWindow{Products: []string{"gamma[0]", "gamma[1]"}},
@@ -338,7 +338,7 @@ func TestJudgeExpires(t *testing.T) {
 			return at
 		}
 	})
-	stream, _ := openJudge(t, r, &kinegatev1.JudgeOpen{Selection: inline(pairSelection()), LatencyBudgetS: proto.Float64(0.5)})
+	stream, _ := openJudge(t, r, &kinegatev1.JudgeOpen{Selection: inline(pairSelection()), LatencyBudgetS: new(0.5)})
 	sendBlock(t, stream, pairBlock(0, 100))
 	v, err := nextVerdict(stream)
 	if err != nil {

@@ -53,7 +53,7 @@ func (w *watched) Read(p []byte) (int, error) {
 		default:
 		}
 	}
-	return n, err //nolint:wrapcheck // as it is
+	return n, err
 }
 
 // stalled opens a stream on a connection, fills its credit with blocks whose verdicts

@@ -43,12 +43,11 @@ func NewCallLog(log zerolog.Logger, sampling Sampling, dropped func()) *CallLog 
 	if dropped == nil {
 		dropped = func() {}
 	}
-	//nolint:gosec // both are at most 1<<30
 	burst := func(then zerolog.Sampler) zerolog.Logger {
-		return log.Sample(&zerolog.BurstSampler{Burst: uint32(sampling.Burst), Period: burstPeriod, NextSampler: then})
+		return log.Sample(&zerolog.BurstSampler{Burst: uint32(sampling.Burst), Period: burstPeriod, NextSampler: then}) //nolint:gosec // at most 1<<30
 	}
 	return &CallLog{
-		well:    burst(&zerolog.BasicSampler{N: uint32(sampling.KeepOneIn)}),
+		well:    burst(&zerolog.BasicSampler{N: uint32(sampling.KeepOneIn)}), //nolint:gosec // at most 1<<30
 		refused: burst(held(dropped)),
 		// Apart from the refused ones, so that a flood of those hides no fault of ours.
 		failed: burst(held(dropped)),

@@ -45,7 +45,7 @@ func New(first int64) *Checker {
 func (c *Checker) Learn(block *kinegatev1.EventBlock, verdict *kinegatev1.VerdictBlock) error {
 	ids, err := column.Int64s(block.GetEventIds())
 	if err != nil {
-		return err //nolint:wrapcheck // it says everything
+		return err
 	}
 	records, err := Records(verdict, len(ids))
 	if err != nil {
@@ -220,7 +220,7 @@ func readEntries(m *kinegatev1.EntryColumns, events int) (*entries, error) {
 	}{{&e.offsets, m.GetOffsets()}, {&e.assignments, m.GetAssignmentOffsets()}, {&e.observables, m.GetObservableOffsets()}} {
 		var err error
 		if *c.to, err = column.Int32s(c.raw); err != nil {
-			return nil, err //nolint:wrapcheck // it says everything
+			return nil, err
 		}
 	}
 	rows := len(m.GetStatuses())

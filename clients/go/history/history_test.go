@@ -17,7 +17,7 @@ func run(blocks int) (events []*kinegatev1.EventBlock, verdicts []*kinegatev1.Ve
 		verdicts = append(verdicts, &kinegatev1.VerdictBlock{
 			Sequence: 5 + i, EventCount: 3, Statuses: []byte{1, 1, 2}, Gate: []byte{byte(1 + i%2)},
 			Hypotheses: []*kinegatev1.HypothesisBits{{Accepted: []byte{3}}},
-			Groups:     []*kinegatev1.GroupBest{{Best: column.Int16([]int16{0, int16(i), -1})}}, //nolint:gosec // small
+			Groups:     []*kinegatev1.GroupBest{{Best: column.Int16([]int16{0, int16(i), -1})}},
 			Entries: &kinegatev1.EntryColumns{
 				Offsets: column.Int32([]int32{0, 1, 2, 2}), HypothesisIndices: column.Int16([]int16{0, 0}),
 				BeamRows: column.Int16([]int16{-1, -1}), Weights: column.Float64([]float64{1, 1}), Statuses: []byte{1, 2},

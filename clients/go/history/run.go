@@ -17,17 +17,17 @@ func LearnSample(ctx context.Context, client *kinegate.Client, open *kinegatev1.
 	c := New(open.GetFirstSequence())
 	stream, err := client.Judge(ctx, open, kinegate.JudgeOptions{})
 	if err != nil {
-		return nil, err //nolint:wrapcheck // the test tells where
+		return nil, err
 	}
 	defer stream.Close()
 	for from := 0; from < events; from += perBlock {
 		block := Photons(from, min(perBlock, events-from))
 		if err := stream.Send(block); err != nil {
-			return nil, err //nolint:wrapcheck // the test tells where
+			return nil, err
 		}
 		v, err := stream.Recv()
 		if err != nil {
-			return nil, err //nolint:wrapcheck // the test tells where
+			return nil, err
 		}
 		if err := c.Learn(block, v); err != nil {
 			return nil, err
@@ -54,7 +54,7 @@ type Run struct {
 func (c *Checker) Check(ctx context.Context, r Run) error {
 	stream, err := r.Client.Judge(ctx, r.Open, r.Options)
 	if err != nil {
-		return err //nolint:wrapcheck // the test tells where
+		return err
 	}
 	defer stream.Close()
 	sent := make(chan error, 1)
@@ -88,8 +88,8 @@ func (c *Checker) send(stream *kinegate.JudgeStream, r *Run) error {
 		block.Sequence = r.Open.GetFirstSequence() + int64(from/r.PerBlock)
 		c.Sent(block)
 		if err := stream.Send(block); err != nil {
-			return err //nolint:wrapcheck // the test tells where
+			return err
 		}
 	}
-	return stream.CloseSend() //nolint:wrapcheck // the test tells where
+	return stream.CloseSend()
 }

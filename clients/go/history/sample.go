@@ -4,8 +4,6 @@ import (
 	"math"
 	"math/rand/v2"
 
-	"google.golang.org/protobuf/proto"
-
 	"example.org/kinegate/proto/column"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 )
@@ -47,7 +45,7 @@ func Photons(from, count int) *kinegatev1.EventBlock {
 func PhotonSelection() *kinegatev1.Selection {
 	mass := func(minimum, maximum float64, products ...string) *kinegatev1.Window {
 		return &kinegatev1.Window{Observable: &kinegatev1.Window_InvariantMass{InvariantMass: &kinegatev1.MassWindow{
-			Products: products, MinGev: proto.Float64(minimum), MaxGev: proto.Float64(maximum),
+			Products: products, MinGev: new(minimum), MaxGev: new(maximum),
 		}}}
 	}
 	record := func(products ...string) []*kinegatev1.Window {

@@ -7,7 +7,6 @@ import (
 	"testing"
 
 	"google.golang.org/protobuf/encoding/protowire"
-	"google.golang.org/protobuf/proto"
 
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 	"example.org/kinegate/service/api/canonical"
@@ -25,8 +24,8 @@ func selection() *kinegatev1.Selection {
 			Condition: &kinegatev1.Condition{Window: &kinegatev1.Window{Observable: &kinegatev1.Window_InvariantMass{
 				InvariantMass: &kinegatev1.MassWindow{
 					Products: []string{"pi0[1]", "eta"},
-					MinGev:   proto.Float64(math.Copysign(0, -1)),
-					MaxGev:   proto.Float64(0.30000000000000004),
+					MinGev:   new(math.Copysign(0, -1)),
+					MaxGev:   new(0.30000000000000004),
 				},
 			}}},
 		}},
@@ -62,7 +61,7 @@ func TestDigestDependsOnEveryPart(t *testing.T) {
 		t.Fatalf("digest %q, %v", base, err)
 	}
 	changed := selection()
-	changed.GetHypotheses()[0].GetCondition().GetWindow().GetInvariantMass().MaxGev = proto.Float64(0.3)
+	changed.GetHypotheses()[0].GetCondition().GetWindow().GetInvariantMass().MaxGev = new(0.3)
 	if other, err := canonical.Digest(changed, "table"); err != nil || other == base {
 		t.Errorf("a changed limit kept the digest (%v)", err)
 	}

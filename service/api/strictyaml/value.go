@@ -39,7 +39,7 @@ var (
 	integerForm = regexp.MustCompile(`^-?(0|[1-9][0-9]*)$`)
 	numberForm  = regexp.MustCompile(`^[-+]?(0|[1-9][0-9]*)(\.[0-9]+)?([eE][-+]?[0-9]+)?$`)
 	// Words that YAML 1.1 reads as booleans and YAML 1.2 as text.
-	oldBooleans = []string{"y", "n", "yes", "no", "on", "off"}
+	oldBooleans = []string{"y", "n", "yes", "no", "on", "off"} //nolint:gochecknoglobals // a list that nothing writes
 )
 
 // scalar converts one scalar, or says why it cannot.

@@ -67,7 +67,8 @@ func (e *environment) printPairs(r *kinegatev1.DescribeDecayResponse, values *de
 	row := func(given string, pair *kinegatev1.DecayPair) {
 		a, b := pair.GetDaughters()[0], pair.GetDaughters()[1]
 		t.Row(given, degrees(a.GetRestFrameAngleRad()), degrees(a.GetLaboratoryAngleRad()), gevs(a.GetLaboratoryMomentumGev()),
-			shown(a.RestFramePerLaboratory != nil, a.GetRestFramePerLaboratory(), number), degrees(b.GetLaboratoryAngleRad()), gevs(b.GetLaboratoryMomentumGev()),
+			shown(a.RestFramePerLaboratory != nil, a.GetRestFramePerLaboratory(), number),
+			degrees(b.GetLaboratoryAngleRad()), gevs(b.GetLaboratoryMomentumGev()),
 			degrees(pair.GetOpeningAngleRad()))
 	}
 	for i, pair := range r.GetRestFramePairs() {

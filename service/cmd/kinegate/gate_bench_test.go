@@ -10,8 +10,6 @@ import (
 	"testing"
 	"time"
 
-	"google.golang.org/protobuf/proto"
-
 	kinegate "example.org/kinegate/clients/go"
 	"example.org/kinegate/kinematics/event"
 	"example.org/kinegate/kinematics/momentum"
@@ -49,7 +47,7 @@ func sixPhotons(events int) *event.Block {
 			b.Class = append(b.Class, event.Photon)
 		}
 		b.EventIDs = append(b.EventIDs, int64(i))
-		b.ObjectOffsets = append(b.ObjectOffsets, int32(len(b.Class))) //nolint:gosec // small
+		b.ObjectOffsets = append(b.ObjectOffsets, int32(len(b.Class)))
 	}
 	return b
 }
@@ -93,7 +91,7 @@ func pairSelection() *kinegatev1.Selection {
 	for i := range 3 {
 		h.Condition.AllOf = append(h.Condition.AllOf, &kinegatev1.Condition{Window: &kinegatev1.Window{
 			Observable: &kinegatev1.Window_InvariantMass{InvariantMass: &kinegatev1.MassWindow{
-				Products: []string{"pi0[" + strconv.Itoa(i) + "]"}, MinGev: proto.Float64(0.11), MaxGev: proto.Float64(0.16),
+				Products: []string{"pi0[" + strconv.Itoa(i) + "]"}, MinGev: new(0.11), MaxGev: new(0.16),
 			}},
 		}})
 	}

@@ -198,7 +198,8 @@ func (e *environment) printMotion(r *kinegatev1.ConvertMotionResponse) error {
 		t := text.NewTable(">flight over", ">takes", ">later than light")
 		seconds := func(x float64) string { return quantity.Format(x, quantity.Time, digits) }
 		for _, f := range r.GetFlights() {
-			t.Row(trimZeros(quantity.Format(f.GetDistanceM(), quantity.Length, digits)), shown(f.TimeS != nil, f.GetTimeS(), seconds), shown(f.DelayAfterLightS != nil, f.GetDelayAfterLightS(), seconds))
+			t.Row(trimZeros(quantity.Format(f.GetDistanceM(), quantity.Length, digits)),
+				shown(f.TimeS != nil, f.GetTimeS(), seconds), shown(f.DelayAfterLightS != nil, f.GetDelayAfterLightS(), seconds))
 		}
 		if err := t.Write(e.out); err != nil {
 			return err
@@ -213,7 +214,8 @@ func (e *environment) printMotion(r *kinegatev1.ConvertMotionResponse) error {
 				angle = "no light"
 			}
 			t.Row(number(c.GetRefractiveIndex()), angle, shown(c.ThresholdBeta != nil, c.GetThresholdBeta(), number),
-				shown(c.ThresholdMomentumGev != nil, c.GetThresholdMomentumGev(), gevs), shown(c.ThresholdKineticEnergyGev != nil, c.GetThresholdKineticEnergyGev(), gevs))
+				shown(c.ThresholdMomentumGev != nil, c.GetThresholdMomentumGev(), gevs),
+				shown(c.ThresholdKineticEnergyGev != nil, c.GetThresholdKineticEnergyGev(), gevs))
 		}
 		if err := t.Write(e.out); err != nil {
 			return err

@@ -101,7 +101,7 @@ func (e *environment) showParticle(ctx context.Context, client *kinegate.Client,
 func (e *environment) listParticles(ctx context.Context, client *kinegate.Client, containing string) error {
 	t := text.NewTable(">number", "name", ">mass", "lifetime", ">charge", "description")
 	request := &kinegatev1.ListParticlesRequest{NameContains: containing}
-	version := ""
+	var version string
 	for {
 		ctx, cancel := e.calling(ctx)
 		reply, err := client.Particles.ListParticles(ctx, request)

@@ -221,8 +221,11 @@ func (e *environment) printSolutions(
 			}
 			p, q := b.GetProducts()[first], b.GetProducts()[second]
 			t.Row(value, degrees(p.GetCentreOfMassAngleRad()), shown(p.LaboratoryAngleRad != nil, p.GetLaboratoryAngleRad(), degrees),
-				shown(p.LaboratoryTotalEnergyGev != nil, p.GetLaboratoryTotalEnergyGev(), gevs), shown(p.LaboratoryMomentumGev != nil, p.GetLaboratoryMomentumGev(), gevs), shown(p.CentreOfMassPerLaboratory != nil, p.GetCentreOfMassPerLaboratory(), number),
-				shown(q.LaboratoryAngleRad != nil, q.GetLaboratoryAngleRad(), degrees), shown(q.LaboratoryMomentumGev != nil, q.GetLaboratoryMomentumGev(), gevs), squareGev(transfer))
+				shown(p.LaboratoryTotalEnergyGev != nil, p.GetLaboratoryTotalEnergyGev(), gevs),
+				shown(p.LaboratoryMomentumGev != nil, p.GetLaboratoryMomentumGev(), gevs),
+				shown(p.CentreOfMassPerLaboratory != nil, p.GetCentreOfMassPerLaboratory(), number),
+				shown(q.LaboratoryAngleRad != nil, q.GetLaboratoryAngleRad(), degrees),
+				shown(q.LaboratoryMomentumGev != nil, q.GetLaboratoryMomentumGev(), gevs), squareGev(transfer))
 		}
 	}
 	if err := t.Write(e.out); err != nil {

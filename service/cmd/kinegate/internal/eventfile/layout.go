@@ -41,7 +41,7 @@ const (
 
 // sets are the coordinate sets in the order of preference, with their columns; the
 // last is optional.
-var sets = []struct {
+var sets = []struct { //nolint:gochecknoglobals // a table that nothing writes
 	coordinates kinegate.Coordinates
 	needed      []string
 	optional    string

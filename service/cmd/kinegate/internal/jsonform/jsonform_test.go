@@ -20,7 +20,7 @@ func TestStandardForm(t *testing.T) {
 		Reaction:        "gamma p -> \"K+\" Lambda\n",
 		State:           kinegatev1.ChannelState_CHANNEL_STATE_OPEN,
 		CentreOfMass:    &kinegatev1.CentreOfMass{SGev2: 3.1415926535897931, Gamma: math.Inf(1)},
-		ExcessEnergyGev: proto.Float64(-0.1),
+		ExcessEnergyGev: new(-0.1),
 		Products:        []*kinegatev1.ProductLimits{{Product: "K+", Number: 0}, {Product: "Lambda", Number: 1}},
 		Inclusive:       &kinegatev1.InclusiveRemainder{},
 	}

@@ -43,7 +43,7 @@ type unit struct {
 }
 
 // units of every dimension, small to large; those with a factor are read and not written.
-var units = []unit{
+var units = []unit{ //nolint:gochecknoglobals // a table that nothing writes
 	{"eV", Energy, -9, 0}, {"keV", Energy, -6, 0}, {"MeV", Energy, -3, 0}, {"GeV", Energy, 0, 0},
 	{"TeV", Energy, 3, 0}, {"PeV", Energy, 6, 0}, {"EeV", Energy, 9, 0},
 	{"urad", Angle, -6, 0}, {"mrad", Angle, -3, 0}, {"rad", Angle, 0, 0}, {"deg", Angle, 0, math.Pi / 180},
@@ -83,12 +83,12 @@ func Parse(text string, dimension Dimension) (float64, error) {
 	return value, nil
 }
 
-// hcGeVm is the Planck constant times the speed of light in GeV m: exact in the SI
+// hcGeVMetre is the Planck constant times the speed of light in GeV m: exact in the SI
 // of 2019, 6.62607015e-34 J s times 299792458 m/s over 1.602176634e-10 J.
-const hcGeVm = 6.62607015e-34 * 299792458 / 1.602176634e-10
+const hcGeVMetre = 6.62607015e-34 * 299792458 / 1.602176634e-10
 
-// hGeVs is the Planck constant in GeV s, likewise exact.
-const hGeVs = 6.62607015e-34 / 1.602176634e-10
+// hGeVSecond is the Planck constant in GeV s, likewise exact.
+const hGeVSecond = 6.62607015e-34 / 1.602176634e-10
 
 // ParsePhotonEnergy reads the energy of a photon, which may also be given by its
 // wavelength in vacuum or its frequency.
@@ -104,9 +104,9 @@ func ParsePhotonEnergy(text string) (float64, error) {
 		if value <= 0 {
 			return 0, fmt.Errorf("%q: a wavelength must be above 0", text)
 		}
-		return hcGeVm / value, nil
+		return hcGeVMetre / value, nil
 	case Frequency:
-		return hGeVs * value, nil
+		return hGeVSecond * value, nil
 	case Angle, Time, CrossSection, Temperature, Density, Square, Rigidity:
 	}
 	return 0, fmt.Errorf("%q is a quantity of %s; a photon energy, wavelength or frequency is needed here",
