@@ -81,6 +81,7 @@ func commands(p program) []*cobra.Command {
 		twoBodyCommand(p),
 		channelsCommand(p),
 		decayCommand(p),
+		generateCommand(p),
 		photonCommand(p),
 		photonFieldCommand(p),
 		dalitzCommand(p),

@@ -8,6 +8,7 @@ import (
 	"encoding/json"
 	"fmt"
 	"math"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -118,13 +119,15 @@ func number(x float64) string {
 func writeColumn(b *bytes.Buffer, f protoreflect.FieldDescriptor, raw []byte) error {
 	name := string(f.Name())
 	switch {
-	case name == "event_ids":
+	case name == "event_ids" || name == "particle_numbers":
 		return array(b, raw, column.Int64s, func(x int64) string { return `"` + strconv.FormatInt(x, 10) + `"` })
 	case strings.HasSuffix(name, "offsets") || name == "groups" || name == "assignments_tried":
 		return array(b, raw, column.Int32s, func(x int32) string { return strconv.Itoa(int(x)) })
-	case name == "hypothesis_indices" || name == "beam_rows" || name == "assignments" || name == "best":
+	case slices.Contains([]string{
+		"hypothesis_indices", "beam_rows", "assignments", "best", "channels", "parents", "object_particles",
+	}, name):
 		return array(b, raw, column.Int16s, func(x int16) string { return strconv.Itoa(int(x)) })
-	case name == "object_classes" || name == "masks" || name == "statuses" || name == "gate" || name == "accepted":
+	case slices.Contains([]string{"object_classes", "masks", "statuses", "gate", "accepted", "decayed"}, name):
 		asIs := func(raw []byte) ([]byte, error) { return raw, nil }
 		return array(b, raw, asIs, func(x byte) string { return strconv.Itoa(int(x)) })
 	}

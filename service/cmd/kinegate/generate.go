@@ -1,0 +1,232 @@
+package main
+
+import (
+	"context"
+	"fmt"
+	"os"
+	"strings"
+
+	"github.com/spf13/cobra"
+
+	kinegate "example.org/kinegate/clients/go"
+	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+	"example.org/kinegate/service/cmd/kinegate/internal/quantity"
+)
+
+// generateCommand makes simulated events.
+func generateCommand(p program) *cobra.Command {
+	g := &generateRun{environment: newEnvironment(p)}
+	c := &cobra.Command{
+		Use:   "generate REACTION... | --request FILE.yaml",
+		Short: "Make simulated events, decayed and measured, into a table or a file",
+		Long: "generate makes events of a reaction, or of a mixture of several with equal shares, and\n" +
+			"prints the first ones and a summary. Event i of a seed is the same event whatever slice it\n" +
+			"is made in. With --detector the events are measured too. Files: .csv (kinegate judge reads\n" +
+			"it), .parquet (one row an event), .kgb (event blocks, each behind its length). Without a\n" +
+			"detector a file holds the true particles that would reach one. --request takes the full\n" +
+			"form: shares, bounds, energy and angular shapes, spectra, targets, decays.",
+		Example: `  kinegate generate "` + omegaExample + `" --beam-range "1.2 GeV:2.4 GeV" --events 10000 --seed 1
+  kinegate generate "gamma p -> K+ Lambda, Lambda -> p pi-" --beam "1.5 GeV" --detector hall.yaml --out events.csv
+  kinegate generate "omega -> pi+ pi- pi0" --events 1000 --out decays.parquet
+  kinegate generate --request sample.yaml --first-event 100000 --events 50000 --out slice.kgb`,
+		RunE: func(c *cobra.Command, args []string) error { return g.run(c.Context(), args) },
+	}
+	g.flags(c)
+	g.initial.add(c)
+	f := c.Flags()
+	f.StringVar(&g.beamRange, "beam-range", "", `energies of the beam, equally likely, as "LOW:HIGH"`)
+	f.StringVar(&g.electrons, "bremsstrahlung", "", "energy of the electrons whose radiated photons the beam is, with complete screening; needs --beam-range")
+	f.Int64Var(&g.events, "events", 1000, "number of events, at least 0")
+	f.Int64Var(&g.first, "first-event", 0, "number of the first event")
+	f.Int64Var(&g.seed, "seed", 1, "seed of the events")
+	f.BoolVar(&g.weighted, "weighted", false, "events with weights, in place of unweighted ones; of one reaction only")
+	f.StringVar(&g.detectorFile, "detector", "", "detector file (YAML); without one there is only the truth")
+	f.StringVar(&g.requestFile, "request", "", "generation file (YAML), in place of reactions and flags of the beam")
+	f.StringVar(&g.outFile, "out", "", "write the events to this file: .csv, .parquet or .kgb")
+	f.IntVar(&g.show, "show", 2, "number of events to print")
+	f.StringVar(&g.massOf, "mass", "", `products whose true invariant mass is drawn, such as "omega" or "p, pi0[1]"`)
+	g.picture.flag(c)
+	return c
+}
+
+const omegaExample = "gamma p -> p omega, omega -> pi0 gamma, pi0 -> gamma gamma"
+
+// generateRun is one run of the command.
+type generateRun struct {
+	*environment
+
+	initial                            initialFlags
+	beamRange, electrons               string
+	events, first, seed                int64
+	weighted                           bool
+	detectorFile, requestFile, outFile string
+	show                               int
+	massOf                             string
+	picture                            drawing
+}
+
+func (g *generateRun) run(ctx context.Context, reactions []string) error {
+	draw, err := g.picture.asked()
+	if err != nil {
+		return err
+	}
+	if (len(reactions) == 0) == (g.requestFile == "") {
+		return badInput("name a reaction, or a file with --request; one or the other")
+	}
+	client, closeClient, err := g.connect(ctx)
+	if err != nil {
+		return err
+	}
+	defer closeClient()
+	generation, err := g.generation(ctx, client, reactions)
+	if err != nil {
+		return err
+	}
+	sink, err := newEventSink(g.outFile)
+	if err != nil {
+		return err
+	}
+	request := &kinegatev1.GenerateEventsRequest{Generation: generation, FirstEvent: g.first, EventCount: g.events}
+	s := &generated{environment: g.environment, sink: sink, show: g.show}
+	if draw || g.massOf != "" {
+		s.masses = &massSample{wanted: g.massOf}
+	}
+	if err := s.receive(ctx, client, request); err != nil {
+		if len(reactions) == 1 {
+			err = underline(err, reactions[0])
+		}
+		return err
+	}
+	if err := s.report(g.outFile); err != nil || s.masses == nil {
+		return err
+	}
+	if draw {
+		return g.picture.save(g.environment, s.masses.picture(s.header))
+	}
+	return s.masses.write(g.environment)
+}
+
+// generation reads the files and flags.
+func (g *generateRun) generation(ctx context.Context, client *kinegate.Client, reactions []string) (*kinegatev1.Generation, error) {
+	m := &kinegatev1.Generation{Seed: g.seed, Weighted: g.weighted}
+	if g.requestFile != "" {
+		var err error
+		if m, err = g.readGeneration(ctx, client); err != nil {
+			return nil, err
+		}
+	} else {
+		for _, text := range reactions {
+			m.Channels = append(m.Channels, &kinegatev1.GenerationChannel{Reaction: text})
+		}
+		var err error
+		if m.InitialState, err = g.initialState(reactions[0]); err != nil {
+			return nil, err
+		}
+	}
+	if g.detectorFile == "" {
+		return m, nil
+	}
+	yaml, err := os.ReadFile(g.detectorFile)
+	if err != nil {
+		return nil, badInput("%w", err)
+	}
+	ctx, cancel := g.calling(ctx)
+	defer cancel()
+	reply, err := client.Generation.CheckDetector(ctx, &kinegatev1.CheckDetectorRequest{
+		Form: &kinegatev1.CheckDetectorRequest_Yaml{Yaml: string(yaml)},
+	})
+	if err != nil {
+		return nil, err
+	}
+	m.Detector = reply.GetDetector()
+	return m, g.faults(g.detectorFile, reply.GetFaults())
+}
+
+// readGeneration reads the generation file on the server.
+func (g *generateRun) readGeneration(ctx context.Context, client *kinegate.Client) (*kinegatev1.Generation, error) {
+	yaml, err := os.ReadFile(g.requestFile)
+	if err != nil {
+		return nil, badInput("%w", err)
+	}
+	ctx, cancel := g.calling(ctx)
+	defer cancel()
+	reply, err := client.Generation.CheckGeneration(ctx, &kinegatev1.CheckGenerationRequest{
+		Form: &kinegatev1.CheckGenerationRequest_Yaml{Yaml: string(yaml)},
+	})
+	if err != nil {
+		return nil, err
+	}
+	return reply.GetGeneration(), g.faults(g.requestFile, reply.GetFaults())
+}
+
+// faults prints the faults of a file and refuses it if there are any.
+func (g *generateRun) faults(name string, faults []*kinegatev1.FieldFault) error {
+	for _, f := range faults {
+		_, _ = fmt.Fprintln(g.err, faultText(name, f))
+	}
+	if len(faults) > 0 {
+		return badInput("%s cannot be used", name)
+	}
+	return nil
+}
+
+// initialState reads the flags of the beam.
+func (g *generateRun) initialState(reaction string) (*kinegatev1.GenerationInitialState, error) {
+	state, err := g.initial.initialState(reaction)
+	if err != nil {
+		return nil, err
+	}
+	if g.beamRange != "" {
+		if state != nil {
+			return nil, badInput("--beam-range stands in place of --beam and --sqrt-s; give one or the other")
+		}
+		spectrum, err := g.spectrum()
+		return &kinegatev1.GenerationInitialState{Kind: &kinegatev1.GenerationInitialState_BeamOnTarget{
+			BeamOnTarget: &kinegatev1.SpectrumOnTarget{Beam: spectrum},
+		}}, err
+	}
+	if g.electrons != "" {
+		return nil, badInput("--bremsstrahlung needs --beam-range, the tagged range")
+	}
+	switch kind := state.GetKind().(type) {
+	case *kinegatev1.InitialState_BeamOnTarget:
+		return &kinegatev1.GenerationInitialState{Kind: &kinegatev1.GenerationInitialState_BeamOnTarget{
+			BeamOnTarget: &kinegatev1.SpectrumOnTarget{Beam: fixedSpectrum(kind.BeamOnTarget.GetBeam())},
+		}}, nil
+	case *kinegatev1.InitialState_TwoBeams:
+		return &kinegatev1.GenerationInitialState{Kind: &kinegatev1.GenerationInitialState_TwoBeams{TwoBeams: &kinegatev1.TwoSpectra{
+			Beam1: fixedSpectrum(kind.TwoBeams.GetBeam1()), Beam2: fixedSpectrum(kind.TwoBeams.GetBeam2()),
+			AngleBetweenBeamsRad: kind.TwoBeams.AngleBetweenBeamsRad,
+		}}}, nil
+	case *kinegatev1.InitialState_SqrtSGev:
+		return &kinegatev1.GenerationInitialState{Kind: &kinegatev1.GenerationInitialState_Total{
+			Total: &kinegatev1.TotalMotion{SqrtSGev: &kind.SqrtSGev},
+		}}, nil
+	}
+	return nil, nil //nolint:nilnil // a decay needs none, and the server says so of others
+}
+
+func fixedSpectrum(m *kinegatev1.BeamMotion) *kinegatev1.BeamSpectrum {
+	return &kinegatev1.BeamSpectrum{Kind: &kinegatev1.BeamSpectrum_Fixed{Fixed: m}}
+}
+
+// spectrum reads a range of beam energies.
+func (g *generateRun) spectrum() (*kinegatev1.BeamSpectrum, error) {
+	low, high, found := strings.Cut(g.beamRange, ":")
+	if !found {
+		return nil, badInput("--beam-range %q: write LOW:HIGH, each with a unit", g.beamRange)
+	}
+	ends, err := flagList("--beam-range", []string{low, high}, quantity.Energy)
+	if err != nil {
+		return nil, err
+	}
+	if g.electrons == "" {
+		return &kinegatev1.BeamSpectrum{Kind: &kinegatev1.BeamSpectrum_Even{
+			Even: &kinegatev1.EnergyRange{MinGev: ends[0], MaxGev: ends[1]},
+		}}, nil
+	}
+	electron, err := energy("--bremsstrahlung", g.electrons)
+	return &kinegatev1.BeamSpectrum{Kind: &kinegatev1.BeamSpectrum_Bremsstrahlung{Bremsstrahlung: &kinegatev1.BremsstrahlungSpectrum{
+		ElectronGev: electron, LowGev: ends[0], HighGev: ends[1], CompleteScreening: true,
+	}}}, err
+}

@@ -1,0 +1,152 @@
+package main
+
+import (
+	"bufio"
+	"errors"
+	"io"
+	"os"
+	"path/filepath"
+	"strings"
+	"testing"
+
+	"google.golang.org/protobuf/encoding/protodelim"
+
+	kinegate "example.org/kinegate/clients/go"
+	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+	"example.org/kinegate/service/cmd/kinegate/internal/eventfile"
+)
+
+const detectorText = `name: small
+calorimeter:
+  theta: {min_rad: 0.1, max_rad: 2.6}
+  stochastic: 0.03
+  theta_sigma_rad: 0.01
+  phi_sigma_rad: 0.01
+  threshold_gev: 0.03
+recoil: {theta: {min_rad: 0.1, max_rad: 2.6}, angle_sigma_rad: 0.01}
+tagger: {sigma_gev: 0.0015, time_sigma_ns: 1}
+`
+
+const generationText = `name: two
+seed: 5
+initial_state:
+  beam_on_target:
+    beam: {bremsstrahlung: {electron_gev: 3, low_gev: 1.2, high_gev: 2.4, complete_screening: true, channel_count: 24}}
+channels:
+  - {name: one pion, reaction: "gamma p -> p pi0, pi0 -> gamma gamma", fraction: 3}
+  - {name: eta, reaction: "gamma p -> p eta, eta -> gamma gamma", angle: {product: eta, slope_per_gev2: 2}}
+`
+
+// write puts a text into a file of the test.
+func write(t *testing.T, name, text string) string {
+	t.Helper()
+	path := filepath.Join(t.TempDir(), name)
+	if err := os.WriteFile(path, []byte(text), 0o600); err != nil {
+		t.Fatal(err)
+	}
+	return path
+}
+
+func TestGenerate(t *testing.T) {
+	t.Parallel()
+	detector, generation := write(t, "detector.yaml", detectorText), write(t, "generation.yaml", generationText)
+	faulty := write(t, "faulty.yaml", strings.Replace(generationText, "fraction", "fration", 1))
+	for _, c := range []struct {
+		arguments string
+		code      int
+		says      string
+	}{
+		{`generate "` + omegaExample + `" --beam-range "1.2 GeV:2.4 GeV" --events 500`, exitWell, "effective events      500"},
+		{`generate "` + omegaExample + `" --beam "1.5 GeV" --events 500 --show 0 --mass omega`, exitWell, "true mass of omega"},
+		{`generate "omega -> pi+ pi- pi0" --events 5 --weighted`, exitWell, "of the sample"},
+		{`generate "gamma gamma -> e+ e-" --beam "1 GeV" --beam2 "1 MeV" --angle "90 deg" --events 5`, exitWell, "e-"},
+		{`generate --request ` + generation + ` --detector ` + detector + ` --events 100`, exitWell, "with an object seen"},
+		{`generate --request ` + generation + ` --events 0`, exitWell, "0, from 0 on, seed 5"},
+		{`generate --request ` + generation + ` --events 10 --json`, exitWell, `"generation_digest"`},
+		{`generate "gamma p -> p eta" --beam "700 MeV"`, exitUsage, "the channel is closed"},
+		{`generate "gamma p -> p etha" --beam "1 GeV"`, exitUsage, "\n               ^"},
+		{`generate "gamma p -> p eta"`, exitUsage, "only a decay needs none"},
+		{`generate "gamma p -> p eta" --beam-range "1 GeV"`, exitUsage, "LOW:HIGH"},
+		{`generate "gamma p -> p eta" --beam "1 GeV" --beam-range "1 GeV:2 GeV"`, exitUsage, "one or the other"},
+		{`generate "gamma p -> p eta" --beam "1 GeV" --out events.txt`, exitUsage, ".parquet"},
+		{`generate "gamma p -> p eta" --beam "1 GeV" --mass pi0`, exitUsage, "the products are p, eta"},
+		{`generate "gamma p -> p eta" --beam "1 GeV" --events -1`, exitUsage, "event_count"},
+		{`generate`, exitUsage, "--request"},
+	} {
+		wantCommand(t, c.arguments, c.code, c.says)
+	}
+	if code, _, errs := command(t, "generate", "--request", faulty); code != exitUsage || !strings.HasPrefix(errs, faulty+":7:") {
+		t.Errorf("code %d, %s", code, errs)
+	}
+}
+
+// TestGenerateCSV holds that the file reads back as the events that the block file holds,
+// but for the masses, which the hypotheses state.
+func TestGenerateCSV(t *testing.T) {
+	t.Parallel()
+	detector, folder := write(t, "detector.yaml", detectorText), t.TempDir()
+	for _, flags := range [][]string{{"--detector", detector}, nil} {
+		line := []string{"generate", omegaExample, "--beam-range", "1.2 GeV:2.4 GeV", "--events", "300", "--first-event", "9"}
+		csv, kgb := filepath.Join(folder, "e.csv"), filepath.Join(folder, "e.kgb")
+		for _, name := range []string{csv, kgb} {
+			if code, _, errs := command(t, append(append(line, flags...), "--out", name)...); code != exitWell {
+				t.Fatal(errs)
+			}
+		}
+		coordinates, want := readBlocks(t, kgb)
+		file, err := os.Open(csv) //nolint:gosec // a file of the test
+		if err != nil {
+			t.Fatal(err)
+		}
+		reader, err := eventfile.NewReader(file)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if reader.Coordinates != coordinates {
+			t.Errorf("coordinates %d, want %d", reader.Coordinates, coordinates)
+		}
+		for i := range want {
+			got, err := reader.Next()
+			if err != nil {
+				t.Fatal(err)
+			}
+			if got.ID != want[i].ID || len(got.Objects) != len(want[i].Objects) || len(got.Beam) != len(want[i].Beam) {
+				t.Fatalf("event %+v, want %+v", got, want[i])
+			}
+			for k, o := range got.Objects {
+				if w := want[i].Objects[k]; [3]float64(o.Values[:3]) != [3]float64(w.Values[:3]) || o.Class != w.Class {
+					t.Errorf("object %+v, want %+v", o, w)
+				}
+			}
+		}
+		if _, err := reader.Next(); !errors.Is(err, io.EOF) {
+			t.Errorf("more than %d events: %v", len(want), err)
+		}
+		_ = file.Close()
+	}
+}
+
+func readBlocks(t *testing.T, name string) (kinegate.Coordinates, []kinegate.Measured) {
+	t.Helper()
+	file, err := os.Open(name) //nolint:gosec // a file of the test
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer func() { _ = file.Close() }()
+	r := bufio.NewReader(file)
+	var all []kinegate.Measured
+	var coordinates kinegate.Coordinates
+	for {
+		m := &kinegatev1.EventBlock{}
+		if err := protodelim.UnmarshalFrom(r, m); errors.Is(err, io.EOF) {
+			return coordinates, all
+		} else if err != nil {
+			t.Fatal(err)
+		}
+		var events []kinegate.Measured
+		if coordinates, events, err = kinegate.ReadEvents(m); err != nil {
+			t.Fatal(err)
+		}
+		all = append(all, events...)
+	}
+}
