@@ -1,4 +1,4 @@
-# The commands of the house; `make help` lists them. Only `go` is needed for demo, test and bench.
+# The commands of the house; `make help` lists them. Only `go` is needed for demo and test.
 .DEFAULT_GOAL := help
 SHELL := bash
 
