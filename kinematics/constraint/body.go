@@ -275,7 +275,7 @@ func (b *body) slopes() {
 	b.q = [3]float64{p * n[0], p * n[1], p * n[2]}
 	b.slope[0] = n
 	for a, e := range [2]float64{n[0], n[1]} {
-		w := p * k
+		w := float64(p * k)
 		b.slope[1+a] = [3]float64{-w * e * n[0], -w * e * n[1], -w * e * n[2]}
 		b.slope[1+a][a] += w
 	}

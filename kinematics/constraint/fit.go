@@ -185,7 +185,7 @@ func (f *Fitter) search() bool {
 
 // merit is what a step lowers.
 func (f *Fitter) merit() float64 {
-	return f.chiSquare()/2 + dot(f.next, f.residual) + float64(f.penalty/2*f.squares())
+	return float64(f.chiSquare()/2) + dot(f.next, f.residual) + float64(f.penalty/2*f.squares())
 }
 
 // reach is the part of the step, at most one, that leaves every size above zero: none

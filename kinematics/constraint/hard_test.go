@@ -64,8 +64,8 @@ func TestTwelvePhotons(t *testing.T) {
 		rest, mass := total, w
 		for k := range 6 {
 			// A chain of two-body decays: pi0 and a lighter rest, the proton last.
-			next := proton + float64(5-k)*pion
-			m := next + (mass-next-pion)*0.6
+			next := proton + float64(float64(5-k)*pion)
+			m := next + float64((mass-next-pion)*0.6)
 			if k == 5 {
 				m = proton
 			}

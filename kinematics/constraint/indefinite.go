@@ -174,7 +174,7 @@ func (d *indefinite) solve(b []float64) {
 			}
 		}
 		v := b[k]
-		b[k] = a[k*n+k] * v
+		b[k] = float64(a[k*n+k] * v)
 		if last > k {
 			w := b[last]
 			b[k] += float64(a[last*n+k] * w)

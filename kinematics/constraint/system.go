@@ -210,7 +210,7 @@ func (f *Fitter) rescale() {
 		if k >= len(p.balance) {
 			least *= f.total
 		}
-		least *= least
+		least = float64(least * least)
 		if !f.held {
 			f.sigma[k] = math.Sqrt(sum + least)
 		}

@@ -36,9 +36,14 @@ type toy struct {
 	spreadZ float64
 }
 
+// between returns a number within a range, evenly spread. Like all of the toys it rounds
+// every product, so that its events are the same on every processor.
+func between(s *random.Stream, low, high float64) float64 {
+	return low + float64(s.Uniform()*(high-low))
+}
+
 func isotropic(s *random.Stream) momentum.Three {
-	c, phi := 2*s.Uniform()-1, math.Pi*(2*s.Uniform()-1)
-	return momentum.FromAngles(1, num.Acos(c), phi)
+	return momentum.FromAngles(1, num.Acos(between(s, -1, 1)), between(s, -math.Pi, math.Pi))
 }
 
 // decayed returns the two products of a parent that decays isotropically.
@@ -58,7 +63,7 @@ func decayed(s *random.Stream, parent momentum.Four, m, m1, m2 float64) (first, 
 // collision returns the beam and the total of a photon on a proton, and its mass.
 func collision(e float64) (beam, total momentum.Four, mass float64) {
 	beam = momentum.Four{P: momentum.Three{Z: e}, E: e}
-	return beam, momentum.Four{P: beam.P, E: e + proton}, math.Sqrt(proton*proton + 2*proton*e)
+	return beam, momentum.Four{P: beam.P, E: e + proton}, math.Sqrt(proton*proton + float64(2*proton*e))
 }
 
 // pionPair returns the four photons of two pions of a total mass.
@@ -71,8 +76,8 @@ func pionPair(s *random.Stream, pair momentum.Four, mass float64) []momentum.Fou
 
 // twoPions returns proton and four photons of gamma p -> p pi0 pi0, with the beam.
 func twoPions(s *random.Stream) (photons []momentum.Four, recoil, beam momentum.Four) {
-	beam, total, w := collision(1.5 + 2*s.Uniform())
-	m := 2*pion + (w-proton-2*pion)*(0.1+0.8*s.Uniform())
+	beam, total, w := collision(between(s, 1.5, 3.5))
+	m := between(s, 2*pion, w-proton)
 	recoil, pair := decayed(s, total, w, proton, m)
 	return pionPair(s, pair, m), recoil, beam
 }
@@ -117,7 +122,7 @@ func toys() []toy {
 			name: "p pi0, proton missing",
 			spec: constraint.Spec{Objects: append(photons(2), missing, beam), Known: target, Conserved: all, Masses: pairs(1)},
 			truth: func(s *random.Stream) []momentum.Four {
-				b, total, w := collision(1 + 2*s.Uniform())
+				b, total, w := collision(between(s, 1, 3))
 				p, pi := decayed(s, total, w, proton, pion)
 				g1, g2 := decayed(s, pi, pion, 0, 0)
 				return []momentum.Four{g1, g2, p, b}
@@ -143,7 +148,7 @@ func toys() []toy {
 				Conserved: all,
 			},
 			truth: func(s *random.Stream) []momentum.Four {
-				e1, e2 := 0.5+s.Uniform(), 0.5+s.Uniform()
+				e1, e2 := between(s, 0.5, 1.5), between(s, 0.5, 1.5)
 				b1 := momentum.Four{P: momentum.Three{Z: e1}, E: e1}
 				b2 := momentum.Four{P: momentum.Three{Z: -e2}, E: e2}
 				p, q := decayed(s, b1.Add(b2), math.Sqrt(4*e1*e2), electron, electron)
@@ -156,8 +161,8 @@ func toys() []toy {
 				Masses:  append(pairs(3), constraint.Mass{Objects: []int{0, 1, 2, 3, 4, 5}, GeV: eta}),
 			},
 			truth: func(s *random.Stream) []momentum.Four {
-				parent := momentum.WithMass(isotropic(s).Scale(0.3+s.Uniform()), eta)
-				m := 2*pion + (eta-3*pion)*(0.1+0.8*s.Uniform())
+				parent := momentum.WithMass(isotropic(s).Scale(between(s, 0.3, 1.3)), eta)
+				m := between(s, 2*pion, eta-pion)
 				third, pair := decayed(s, parent, eta, pion, m)
 				g := pionPair(s, pair, m)
 				g5, g6 := decayed(s, third, pion, 0, 0)
@@ -172,7 +177,7 @@ func toys() []toy {
 				Known:   target, Conserved: all, Masses: []constraint.Mass{{Objects: []int{1, 2}, GeV: lambda}},
 			},
 			truth: func(s *random.Stream) []momentum.Four {
-				b, total, w := collision(1.3 + s.Uniform())
+				b, total, w := collision(between(s, 1.3, 2.3))
 				k, l := decayed(s, total, w, kaon, lambda)
 				p, pi := decayed(s, l, lambda, proton, charged)
 				return []momentum.Four{k, p, pi, b}
@@ -186,7 +191,7 @@ func toys() []toy {
 				Known: target, Conserved: all, Masses: []constraint.Mass{{Objects: []int{0, 1}, GeV: eta}},
 			},
 			truth: func(s *random.Stream) []momentum.Four {
-				b, total, w := collision(1.2 + s.Uniform())
+				b, total, w := collision(between(s, 1.2, 2.2))
 				p, h := decayed(s, total, w, proton, eta)
 				g1, g2 := decayed(s, h, eta, 0, 0)
 				return []momentum.Four{g1, g2, p, b}
@@ -216,13 +221,13 @@ func (y *toy) event(f *constraint.Fitter, s *random.Stream) (truth []momentum.Fo
 			break
 		}
 	}
-	z = y.spreadZ * (s.Uniform() - 0.5)
+	z = between(s, -y.spreadZ/2, y.spreadZ/2)
 	for i, p := range truth {
 		o, m := &y.spec.Objects[i], &f.Measurements[i]
 		switch o.Form {
 		case constraint.Along:
 			sigma := 0.003 * y.spread
-			*m = constraint.Beam(p.E+sigma*s.Normal(), sigma, 0)
+			*m = constraint.Beam(p.E+float64(sigma*s.Normal()), sigma, 0)
 		case constraint.Coordinates:
 			y.measure(m, o, p, z, s)
 		case constraint.Missing, constraint.MissingMass:
@@ -258,18 +263,18 @@ func (y *toy) measure(m *constraint.Measurement, o *constraint.Object, p momentu
 	seen := p.P
 	if o.Repointed {
 		u := p.P.Unit()
-		hit := momentum.Three{Z: z}.Add(u.Scale(-z*u.Z + math.Sqrt(z*u.Z*z*u.Z+1-z*z)))
+		hit := momentum.Three{Z: z}.Add(u.Scale(math.Sqrt(1-float64((z-float64(z*u.Z))*(z+float64(z*u.Z))))-float64(z*u.Z)))
 		m.Origin, m.Cluster, seen = momentum.Three{}, hit, hit
 	}
 	theta, phi := seen.Theta(), seen.Phi()
-	sigma := [3]float64{relative * size * y.spread, angle * y.spread, angle / math.Sin(theta) * y.spread}
+	sigma := [3]float64{relative * size * y.spread, angle * y.spread, angle / num.Sin(theta) * y.spread}
 	const rho = 0.4
 	x, w, v := s.Normal(), s.Normal(), s.Normal()
 	m.Kind, m.MassGeV = event.MomentumAngles, o.MassGeV
 	m.Values = [3]float64{
-		size + sigma[0]*x,
-		theta + sigma[1]*(rho*x+math.Sqrt(1-rho*rho)*w),
-		phi + sigma[2]*v,
+		size + float64(sigma[0]*x),
+		theta + float64(sigma[1]*(float64(rho*x)+float64(math.Sqrt(1-rho*rho)*w))),
+		phi + float64(sigma[2]*v),
 	}
 	m.Covariance = [6]float64{sigma[0] * sigma[0], rho * sigma[0] * sigma[1], 0, sigma[1] * sigma[1], 0, sigma[2] * sigma[2]}
 }
