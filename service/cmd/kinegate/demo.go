@@ -11,7 +11,6 @@ import (
 	"github.com/spf13/cobra"
 
 	kinegate "example.org/kinegate/clients/go"
-	"example.org/kinegate/kinematics/particle"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 	"example.org/kinegate/service/api"
 	"example.org/kinegate/service/cmd/kinegate/internal/eventfile"
@@ -28,8 +27,8 @@ func demoCommand(p program) *cobra.Command {
 		Short: "Run the main job once, on the invented Marrow Hall",
 		Long: "demo starts a server on a loopback port, asks it which channels are open in the tagged\n" +
 			"range of Marrow Hall, an invented experiment, streams simulated events to it and prints\n" +
-			"what a shift physicist wants to know. The events come from this program's own generator\n" +
-			"and are the same for the same seed.",
+			"what a shift physicist wants to know. The events come from the server too, and are the\n" +
+			"same for the same seed.",
 		Example: `  kinegate demo
   kinegate demo --keep hall`,
 		Args: usage(cobra.NoArgs),
@@ -76,12 +75,8 @@ func (d *demo) run(ctx context.Context) error {
 	if err != nil {
 		return err
 	}
-	table, err := particle.New()
-	if err != nil {
-		return err
-	}
 	start := time.Now()
-	events, err := hall.Events(table, d.seed, d.events)
+	events, err := hall.Events(ctx, client.Generation, d.seed, d.events)
 	if err != nil {
 		return err
 	}

@@ -1,16 +1,14 @@
 package hall
 
 import (
+	"context"
+	"errors"
 	"fmt"
+	"io"
 	"math"
 
 	kinegate "example.org/kinegate/clients/go"
-	"example.org/kinegate/kinematics/detector"
-	"example.org/kinegate/kinematics/event"
-	"example.org/kinegate/kinematics/generation"
 	"example.org/kinegate/kinematics/num/random"
-	"example.org/kinegate/kinematics/particle"
-	"example.org/kinegate/kinematics/reaction"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 )
 
@@ -23,12 +21,9 @@ type Event struct {
 	Channel int
 }
 
-// batchSize is how many events are drawn at once, before the pre-trigger.
-const batchSize = 2000
-
-// Events makes events of the mixture that pass the pre-trigger, in a random order.
-// The same seed gives the same events.
-func Events(table *particle.Table, seed uint64, count int) ([]Event, error) {
+// Events asks a server for events of the mixture, keeps those that pass the pre-trigger and
+// puts them in a random order. The same seed gives the same events.
+func Events(ctx context.Context, client kinegatev1.GenerationServiceClient, seed uint64, count int) ([]Event, error) {
 	events := make([]Event, 0, count)
 	mix := Mix()
 	for c, channel := range mix {
@@ -36,7 +31,13 @@ func Events(table *particle.Table, seed uint64, count int) ([]Event, error) {
 		if c == len(mix)-1 {
 			wanted = count - len(events)
 		}
-		made, err := channelEvents(table, seed, c, channel, wanted)
+		// Each channel has streams of its own.
+		own := seed + uint64(c)<<32 //nolint:gosec // the index is small
+		if channel.Reaction == "" {
+			events = append(events, noiseEvents(own, c, wanted)...)
+			continue
+		}
+		made, err := channelEvents(ctx, client, generation(int64(own), channel), c, wanted) //nolint:gosec // any 64 bits are a seed
 		if err != nil {
 			return nil, fmt.Errorf("channel %s: %w", channel.Name, err)
 		}
@@ -55,117 +56,74 @@ func Events(table *particle.Table, seed uint64, count int) ([]Event, error) {
 	return events, nil
 }
 
-// channelEvents makes events of one channel.
-func channelEvents(table *particle.Table, seed uint64, index int, channel Channel, wanted int) ([]Event, error) {
-	// Each channel has streams of its own.
-	seed += uint64(index) << 32 //nolint:gosec // the index is small
-	if channel.Reaction == "" {
-		return noiseEvents(seed, index, wanted), nil
-	}
-	generator, err := newGenerator(table, seed, channel)
+// channelEvents takes events of one channel from the server until enough of them have
+// passed the pre-trigger, and gives the rest up.
+func channelEvents(
+	ctx context.Context, client kinegatev1.GenerationServiceClient, sample *kinegatev1.Generation, channel, wanted int,
+) ([]Event, error) {
+	ctx, cancel := context.WithCancel(ctx)
+	defer cancel()
+	const most = 2_000_000
+	stream, err := client.GenerateEvents(ctx, &kinegatev1.GenerateEventsRequest{
+		Generation: sample, EventCount: most, WithoutTruth: true,
+	})
 	if err != nil {
 		return nil, err
 	}
-	hall, err := detector.New(Detector(seed))
-	if err != nil {
-		return nil, err
-	}
-	var truth event.Truth
-	var block event.Block
 	events := make([]Event, 0, wanted)
-	const mostBatches = 1000
-	for batch := range int64(mostBatches) {
-		if _, err := generator.Fill(batch*batchSize, batchSize, &truth); err != nil {
+	for len(events) < wanted {
+		frame, err := stream.Recv()
+		if errors.Is(err, io.EOF) {
+			return nil, fmt.Errorf("%d events do not give %d that pass the pre-trigger", most, wanted)
+		}
+		if err != nil {
 			return nil, err
 		}
-		hall.Measure(&truth, &block, nil)
-		for i := range block.Events() {
-			if len(events) == wanted {
-				return events, nil
-			}
-			if truth.Weight[i] > 0 && triggers(&block, i) {
-				events = append(events, measured(&block, i, index))
+		if frame.GetBlock() == nil {
+			continue
+		}
+		_, measured, err := kinegate.ReadEvents(frame.GetBlock().GetEvents())
+		if err != nil {
+			return nil, err
+		}
+		for _, e := range measured {
+			if len(events) < wanted && triggers(e.Objects) {
+				events = append(events, Event{Channel: channel, Objects: e.Objects, Beam: e.Beam})
 			}
 		}
 	}
-	return nil, fmt.Errorf("%d events do not give %d that pass the pre-trigger", mostBatches*batchSize, wanted)
-}
-
-func newGenerator(table *particle.Table, seed uint64, channel Channel) (*generation.Generator, error) {
-	r, err := reaction.Parse(table, channel.Reaction)
-	if err != nil {
-		return nil, err
-	}
-	products, _, err := generation.ProductsOf(r, 0)
-	if err != nil {
-		return nil, err
-	}
-	proton, err := table.Named("p")
-	if err != nil {
-		return nil, err
-	}
-	return generation.New(generation.Config{
-		Seed:    seed,
-		Initial: Initial(proton.Mass),
-		Channels: []generation.Channel{{
-			Name: channel.Name, Fraction: 1, Products: products,
-			Energy: generation.EnergyShape{Kind: generation.PhaseSpaceRate},
-		}},
-		Target:      Target(),
-		Accidentals: Accidentals(),
-	})
+	return events, nil
 }
 
 // triggers is the pre-trigger: two clusters or two tracks.
-func triggers(block *event.Block, i int) bool {
+func triggers(objects []kinegate.Object) bool {
+	const tracked = 7 // momentum and direction, where a recoil detector sees a direction only
 	clusters, tracks := 0, 0
-	first, end := block.Objects(i)
-	for row := first; row < end; row++ {
-		switch block.Class[row] {
-		case event.Photon:
+	for _, o := range objects {
+		switch o.Class {
+		case kinegatev1.ObjectClass_OBJECT_CLASS_PHOTON:
 			clusters++
-		case event.Positive, event.Negative:
-			if block.MeasuredMask(row) == event.AllMeasured {
+		case kinegatev1.ObjectClass_OBJECT_CLASS_POSITIVE, kinegatev1.ObjectClass_OBJECT_CLASS_NEGATIVE:
+			if o.Measured == tracked {
 				tracks++
 			}
-		case event.Neutral:
+		case kinegatev1.ObjectClass_OBJECT_CLASS_NEUTRAL, kinegatev1.ObjectClass_OBJECT_CLASS_UNSPECIFIED:
 		}
 	}
 	return clusters >= 2 || tracks >= 2
-}
-
-// measured copies event i of a block in momentum and angles.
-func measured(block *event.Block, i, channel int) Event {
-	e := Event{Channel: channel, Beam: []kinegate.BeamCandidate{}}
-	first, end := block.Objects(i)
-	x := &block.Coordinates.Columns
-	for row := first; row < end; row++ {
-		e.Objects = append(e.Objects, kinegate.Object{
-			Values:   [4]float64{x[0][row], x[1][row], x[2][row]},
-			Class:    kinegatev1.ObjectClass(block.Class[row]),
-			Species:  block.SpeciesMask(row),
-			Measured: block.MeasuredMask(row),
-		})
-	}
-	for row, last := block.Candidates(i); row < last; row++ {
-		e.Beam = append(e.Beam, kinegate.BeamCandidate{
-			Energy: block.Beam.EnergyGeV[row], Sigma: block.Beam.SigmaGeV[row], Time: block.Beam.TimeNS[row],
-		})
-	}
-	return e
 }
 
 // noiseEvents makes events of two to four clusters that have nothing to do with one
 // another, with one beam candidate at a random time.
 func noiseEvents(seed uint64, channel, count int) []Event {
 	const meanGeV, thresholdGeV = 0.15, 0.03
-	calorimeter := Detector(seed).Calorimeter.Theta
+	calorimeter := Detector().GetCalorimeter().GetTheta()
 	events := make([]Event, 0, count)
 	for i := range count {
 		s := random.New(seed, random.Generation, int64(i))
 		e := Event{Channel: channel}
 		for range 2 + s.Below(3) {
-			low, high := math.Cos(calorimeter.MaxRad), math.Cos(calorimeter.MinRad)
+			low, high := math.Cos(calorimeter.GetMaxRad()), math.Cos(calorimeter.GetMinRad())
 			energy := thresholdGeV + meanGeV*s.Exponential()
 			theta := math.Acos(low + (high-low)*s.Uniform())
 			phi := math.Pi * (2*s.Uniform() - 1)

@@ -7,9 +7,7 @@ import (
 	_ "embed"
 	"math"
 
-	"example.org/kinegate/kinematics/detector"
-	"example.org/kinegate/kinematics/event"
-	"example.org/kinegate/kinematics/generation"
+	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 )
 
 // Selection is the selection file of the hall.
@@ -60,64 +58,77 @@ func Mix() []Channel {
 	}
 }
 
-// Initial is the initial state: the tagged beam on hydrogen at rest.
-func Initial(protonMassGeV float64) generation.Initial {
-	tagged := generation.Bremsstrahlung{
-		ElectronGeV: ElectronGeV, LowGeV: LowGeV, HighGeV: HighGeV, CompleteScreening: true,
-	}
-	return generation.FixedTarget{
-		Beam:          generation.Beam{Spectrum: tagged.Channels(TaggerCount)},
-		TargetMassGeV: protonMassGeV,
+// initialState is the tagged beam on hydrogen at rest.
+func initialState() *kinegatev1.GenerationInitialState {
+	return &kinegatev1.GenerationInitialState{Kind: &kinegatev1.GenerationInitialState_BeamOnTarget{
+		BeamOnTarget: &kinegatev1.SpectrumOnTarget{Beam: &kinegatev1.BeamSpectrum{
+			Kind: &kinegatev1.BeamSpectrum_Bremsstrahlung{Bremsstrahlung: &kinegatev1.BremsstrahlungSpectrum{
+				ElectronGev: ElectronGeV, LowGev: LowGeV, HighGev: HighGeV, CompleteScreening: true, ChannelCount: TaggerCount,
+			}},
+		}},
+	}}
+}
+
+// generation is the sample of one channel: 5 cm of liquid hydrogen, and 0.2 candidates of
+// other beam photons an event.
+func generation(seed int64, channel Channel) *kinegatev1.Generation {
+	return &kinegatev1.Generation{
+		Seed:         seed,
+		InitialState: initialState(),
+		Channels: []*kinegatev1.GenerationChannel{{
+			Name: channel.Name, Reaction: channel.Reaction,
+			Energy: &kinegatev1.EnergyDependence{Kind: &kinegatev1.EnergyDependence_PhaseSpace{}},
+		}},
+		Target:      &kinegatev1.TargetRegion{LengthM: 0.05},
+		Accidentals: &kinegatev1.AccidentalCandidates{RateHz: TaggedRateHz, WindowNs: TaggerWidthNs},
+		Detector:    Detector(),
 	}
 }
 
 const degree = math.Pi / 180
 
+func polar(low, high float64) *kinegatev1.PolarRange {
+	return &kinegatev1.PolarRange{MinRad: low * degree, MaxRad: high * degree}
+}
+
 // Detector describes the detector of the hall.
-func Detector(seed uint64) detector.Config {
+func Detector() *kinegatev1.Detector {
 	edges := make([]float64, TaggerCount+1)
 	for i := range edges {
 		edges[i] = LowGeV + (HighGeV-LowGeV)*float64(i)/TaggerCount
 	}
-	return detector.Config{
-		Seed: seed,
-		Calorimeter: &detector.Calorimeter{
-			Theta:      detector.Polar{MinRad: 6 * degree, MaxRad: 150 * degree},
+	calorimeter, tracker := 0.97, 0.92
+	return &kinegatev1.Detector{
+		Name:        "marrow-hall",
+		Description: "Calorimeter, tracker and tagger of an invented experiment.",
+		Calorimeter: &kinegatev1.Calorimeter{
+			Theta:      polar(6, 150),
 			RadiusM:    1,
 			Stochastic: 0.028, Constant: 0.012,
 			ThetaSigmaRad: 0.010, PhiSigmaRad: 0.010,
-			ThresholdGeV:  0.030,
-			Efficiency:    0.97,
+			ThresholdGev:  0.030,
+			Efficiency:    &calorimeter,
 			MergeAngleRad: 5 * degree,
-			SplitOff: &detector.SplitOff{
+			SplitOff: &kinegatev1.SplitOff{
 				Probability: 0.02, MinShare: 0.05, MaxShare: 0.2, MinAngleRad: 6 * degree, MaxAngleRad: 15 * degree,
 			},
-			Noise: &detector.Noise{Probability: 0.01, MeanGeV: 0.05},
+			Noise: &kinegatev1.ClusterNoise{Probability: 0.01, MeanGev: 0.05},
 		},
-		Tracker: &detector.Tracker{
-			Theta:          detector.Polar{MinRad: 10 * degree, MaxRad: 140 * degree},
-			MomentumMinGeV: 0.15,
-			Constant:       0.015, PerGeV: 0.01,
+		Tracker: &kinegatev1.Tracker{
+			Theta:          polar(10, 140),
+			MomentumMinGev: 0.15,
+			Constant:       0.015, PerGev: 0.01,
 			AngleSigmaRad: 0.003,
-			Efficiency:    0.92,
+			Efficiency:    &tracker,
 			Identify:      true,
-			Confusions: []detector.Confusion{
-				{From: event.SpeciesProton, To: event.SpeciesPion, Probability: 0.05},
-				{From: event.SpeciesPion, To: event.SpeciesProton, Probability: 0.05},
+			Confusions: []*kinegatev1.SpeciesConfusion{
+				{From: kinegatev1.Species_SPECIES_PROTON, To: kinegatev1.Species_SPECIES_PION, Probability: 0.05},
+				{From: kinegatev1.Species_SPECIES_PION, To: kinegatev1.Species_SPECIES_PROTON, Probability: 0.05},
 			},
 		},
-		Recoil: &detector.Recoil{
-			Theta:          detector.Polar{MinRad: 10 * degree, MaxRad: 140 * degree},
-			MomentumMinGeV: 0.15, AngleSigmaRad: 0.008, Efficiency: 0.92,
+		Recoil: &kinegatev1.DirectionDetector{
+			Theta: polar(10, 140), MomentumMinGev: 0.15, AngleSigmaRad: 0.008, Efficiency: &tracker,
 		},
-		Tagger: &detector.Tagger{EdgesGeV: edges, TimeSigmaNS: 1.5},
+		Tagger: &kinegatev1.Tagger{EdgesGev: edges, TimeSigmaNs: 1.5},
 	}
-}
-
-// Target is where the interactions happen: 5 cm of liquid hydrogen.
-func Target() generation.Region { return generation.Region{LengthM: 0.05} }
-
-// Accidentals are the candidates of other beam photons: 0.2 an event.
-func Accidentals() generation.Accidentals {
-	return generation.Accidentals{RateHz: TaggedRateHz, WindowNS: TaggerWidthNs}
 }
