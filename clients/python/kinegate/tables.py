@@ -12,7 +12,7 @@ if TYPE_CHECKING:
 __all__ = ["Table"]
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, repr=False)
 class Table:
     """Rows of text below headings.
 
@@ -41,6 +41,8 @@ class Table:
             for row in grid
         ]
         return "\n".join([*lines, *([self.note] if self.note else [])])
+
+    __repr__ = __str__
 
     def _repr_html_(self) -> str:
         head = "".join(f"<th>{html.escape(c)}</th>" for c in self.columns)

@@ -210,6 +210,8 @@ def format_energy(value: float, digits: int = 7) -> str:
 
     >>> format_energy(0.9110817)
     '911.0817 MeV'
+    >>> format_energy(1.23e-4, 2)
+    '120 keV'
     """
     return _scaled(value, "energy", digits)
 
@@ -253,4 +255,6 @@ def _scaled(value: float, dimension: str, digits: int) -> str:
 
 
 def _digits(value: float, digits: int) -> str:
-    return f"{value:.{digits}g}"
+    text = f"{value:.{digits}g}"
+    # Whole numbers of more digits than asked for stay readable: 120, not 1.2e+02.
+    return f"{float(text):.0f}" if "e+" in text and abs(value) < 1e7 else text  # noqa: PLR2004

@@ -1,0 +1,112 @@
+"""A million events from numpy through the judge stream and back to numpy.
+
+Prints how processor time and wall time compare with the server's own processor time, and how
+much faster blocks are than one event a message. Usage: python bench/stream.py [events]
+"""
+
+from __future__ import annotations
+
+import sys
+import time
+from pathlib import Path
+
+import numpy as np
+
+import kinegate
+
+MASS = 0.1349768
+
+
+def six_photons(count: int) -> kinegate.Events:
+    """Make six photons of three neutral pions an event, out of order."""
+    rng = np.random.default_rng(5)
+    boost = rng.normal(0, 0.3, (count, 3, 3))
+    direction = rng.normal(size=(count, 3, 3))
+    direction *= MASS / 2 / np.linalg.norm(direction, axis=2, keepdims=True)
+    # Boost both photons of each pion by its momentum.
+    energy = np.sqrt((boost**2).sum(2, keepdims=True) + MASS**2)
+    along = (boost * direction).sum(2, keepdims=True)
+    photons = []
+    for sign in (1.0, -1.0):
+        p = sign * direction
+        photons.append(p + boost * (sign * along / (MASS * (energy + MASS)) + 1 / 2))
+    p = np.concatenate(photons, axis=1)
+    p = np.ascontiguousarray(p[:, rng.permutation(6)])
+    norm = np.linalg.norm(p, axis=2)
+    return kinegate.Events.of(
+        momentum_gev=norm,
+        theta_rad=np.arctan2(np.hypot(p[..., 0], p[..., 1]), p[..., 2]),
+        phi_rad=np.arctan2(p[..., 1], p[..., 0]),
+        classes=np.full(6, kinegate.PHOTON),
+    )
+
+
+SELECTION = {
+    "name": "pions",
+    "hypotheses": [
+        {
+            "name": "pions",
+            "reaction": "eta -> pi0 pi0 pi0, pi0 -> gamma gamma",
+            "condition": {
+                "all_of": [
+                    {
+                        "window": {
+                            "invariant_mass": {
+                                "products": [f"pi0[{i}]"],
+                                "min_gev": 0.11,
+                                "max_gev": 0.16,
+                            }
+                        }
+                    }
+                    for i in range(3)
+                ]
+            },
+        }
+    ],
+}
+
+
+def server_cpu(process: int) -> float:
+    """Return the processor time of a process in second; USER_HZ is 100 on every Linux."""
+    fields = Path(f"/proc/{process}/stat").read_text(encoding="ascii").rpartition(")")[2].split()
+    return (int(fields[11]) + int(fields[12])) / 100
+
+
+def measure(
+    server: kinegate.LocalServer, sample: kinegate.Events, events_per_block: int, entries: str
+) -> tuple[float, float, float, int]:
+    """Return wall time, client's and server's processor time, and accepted events."""
+    with server.connect() as client:
+        selection = client.selection(SELECTION)
+        wall, own, other = time.perf_counter(), time.process_time(), server_cpu(server.process.pid)
+        stream = client.judge(sample, selection, events_per_block=events_per_block, entries=entries)
+        accepted = sum(int(v.gate.sum()) for _, v in stream)
+        return (
+            time.perf_counter() - wall,
+            time.process_time() - own,
+            server_cpu(server.process.pid) - other,
+            accepted,
+        )
+
+
+def main() -> None:
+    """Measure and print."""
+    count = int(sys.argv[1]) if len(sys.argv) > 1 else 1_000_000
+    sample = six_photons(count)
+    with kinegate.start_server() as server:
+        measure(server, sample.cut(0, 20_000), 1000, "none")
+        wall, own, other, accepted = measure(server, sample, 1000, "none")
+        print(f"{count} events in blocks of 1,000: {wall:.2f} s, {accepted} accepted")
+        print(f"  processor: server {other:.2f} s, client {own:.2f} s")
+        print(f"  both processors over the server's: {(own + other) / other:.2f}")
+        print(f"  wall time over the server's processor time: {wall / other:.2f}")
+        few = sample.cut(0, min(count, 20_000))
+        single, _, _, _ = measure(server, few, 1, "none")
+        ratio = single / len(few) / (wall / count)
+        print(
+            f"  one event a message: {single / len(few) * 1e6:.0f} us an event, {ratio:.0f} times slower"
+        )
+
+
+if __name__ == "__main__":
+    main()
