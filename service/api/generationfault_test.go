@@ -6,7 +6,6 @@ import (
 	"testing"
 
 	"google.golang.org/grpc/codes"
-	"google.golang.org/protobuf/proto"
 
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 )
@@ -44,7 +43,7 @@ func TestGenerationFaults(t *testing.T) {
 		"no text":          {func(g *kinegatev1.Generation) { g.Channels[1].Reaction = "" }, codes.InvalidArgument, "channels[1].reaction", "exactly one"},
 		"other beam":       {func(g *kinegatev1.Generation) { g.Channels[1].Reaction = "gamma n -> n pi0" }, codes.InvalidArgument, "channels[1].reaction", "same initial"},
 		"inclusive":        {func(g *kinegatev1.Generation) { g.Channels[1].Reaction = "gamma p -> K+ X" }, codes.Unimplemented, "channels[1].reaction", "no products"},
-		"negative share":   {func(g *kinegatev1.Generation) { g.Channels[1].Fraction = proto.Float64(-1) }, codes.InvalidArgument, "channels[1].fraction", ">= 0"},
+		"negative share":   {func(g *kinegatev1.Generation) { g.Channels[1].Fraction = new(-1.0) }, codes.InvalidArgument, "channels[1].fraction", ">= 0"},
 		"bound":            {func(g *kinegatev1.Generation) { g.Channels[0].Bound = new(math.NaN()) }, codes.InvalidArgument, "channels[0].bound", "finite"},
 		"weighted mixture": {func(g *kinegatev1.Generation) { g.Weighted = true }, codes.InvalidArgument, "weighted", "mixture"},
 		"no beam":          {func(g *kinegatev1.Generation) { g.InitialState = nil }, codes.InvalidArgument, "initial_state", "only a decay"},

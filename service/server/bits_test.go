@@ -10,8 +10,6 @@ import (
 	"testing"
 	"time"
 
-	"google.golang.org/protobuf/proto"
-
 	kinegate "example.org/kinegate/clients/go"
 	"example.org/kinegate/clients/go/history"
 	"example.org/kinegate/kinematics"
@@ -111,7 +109,7 @@ func TestOverloadIsSaid(t *testing.T) {
 	const events = 40000
 	c := learned(t, r, history.AllEntries(), events)
 	open := history.AllEntries()
-	open.LatencyBudgetS = proto.Float64(0.004)
+	open.LatencyBudgetS = new(0.004)
 	verify(t, c, history.Run{
 		Client: r.client(t), Open: open, Events: events, PerBlock: 4000, Options: kinegate.JudgeOptions{Queue: 1},
 	})

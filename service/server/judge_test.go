@@ -188,7 +188,7 @@ func TestJudgeRefusals(t *testing.T) {
 		}), api.SelectionNotFound},
 		{"negative sequence", opening(func(o *kinegatev1.JudgeOpen) { o.FirstSequence = -1 }), api.FieldInvalid},
 		{"negative limit", opening(func(o *kinegatev1.JudgeOpen) { o.Limits = &kinegatev1.Limits{BlockEventCount: -1} }), api.FieldInvalid},
-		{"budget", opening(func(o *kinegatev1.JudgeOpen) { o.LatencyBudgetS = proto.Float64(0) }), api.FieldInvalid},
+		{"budget", opening(func(o *kinegatev1.JudgeOpen) { o.LatencyBudgetS = new(0.0) }), api.FieldInvalid},
 		{"entries", opening(func(o *kinegatev1.JudgeOpen) { o.Entries = 9 }), api.FieldInvalid},
 		{"opened twice", append(opened, opened...), api.StreamProtocolBroken},
 		{"empty frame later", append(opened, &kinegatev1.JudgeRequest{}), api.StreamProtocolBroken},
