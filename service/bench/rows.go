@@ -18,6 +18,22 @@ func rows() []row {
 			measure: benchmarkMetric("./service/cmd/kinegate", "BenchmarkJudgeStream", "x-in-process"),
 		},
 		{
+			name: "p99 of verdicts beside bulk work over alone", limit: 3, aim: 1,
+			measure: benchmarkMetric("./service/cmd/kinegate", "BenchmarkGateBesideBulk", "x-p99"),
+		},
+		{name: "  verdict on 100 events at 20 % load, median in us", measure: latency("load=20", "us-p50")},
+		{name: "  verdict on 100 events at 20 % load, p99 in us", measure: latency("load=20", "us-p99")},
+		{name: "  verdict on 100 events at 50 % load, median in us", measure: latency("load=50", "us-p50")},
+		{name: "  verdict on 100 events at 50 % load, p99 in us", measure: latency("load=50", "us-p99")},
+		{name: "  verdict on 100 events at 80 % load, median in us", measure: latency("load=80", "us-p50")},
+		{name: "  verdict on 100 events at 80 % load, p99 in us", measure: latency("load=80", "us-p99")},
+		{
+			name: "six-photon pair masses over plain numpy", limit: 2, aim: 4, atLeast: true,
+			measure: pairMasses("plain"),
+		},
+		{name: "  the same over numpy in place", measure: pairMasses("in-place")},
+		{name: "  the same over a plain C++ loop (-O2)", measure: pairMasses("loop")},
+		{
 			name: "four-body phase space, events a second over numpy", limit: 3, aim: 5, atLeast: true,
 			measure: timesFaster(
 				benchmarkMetric("./kinematics/generation", "BenchmarkPhaseSpace/n=04", "ns/op"),
@@ -25,4 +41,9 @@ func rows() []row {
 			),
 		},
 	}
+}
+
+// latency reads one figure of the open-loop generator.
+func latency(load, figure string) measure {
+	return benchmarkMetric("./service/cmd/kinegate", "BenchmarkJudgeLatency/"+load, figure)
 }
