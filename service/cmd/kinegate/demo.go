@@ -15,6 +15,7 @@ import (
 	"example.org/kinegate/service/api"
 	"example.org/kinegate/service/cmd/kinegate/internal/eventfile"
 	"example.org/kinegate/service/cmd/kinegate/internal/hall"
+	"example.org/kinegate/service/cmd/kinegate/internal/jsonform"
 	"example.org/kinegate/service/cmd/kinegate/internal/quantity"
 	"example.org/kinegate/service/cmd/kinegate/internal/text"
 )
@@ -38,7 +39,7 @@ func demoCommand(p program) *cobra.Command {
 	f := c.Flags()
 	f.IntVar(&d.events, "events", 40000, "number of events, 100 to 1000000")
 	f.Uint64Var(&d.seed, "seed", 1, "seed of the events")
-	f.StringVar(&d.keep, "keep", "", "folder to write the selection and the events to, for kinegate judge")
+	f.StringVar(&d.keep, "keep", "", "folder to write the selection, the events and the detector to, for kinegate judge and generate")
 	return c
 }
 
@@ -196,7 +197,15 @@ func (d *demo) next(events []hall.Event) error {
 		if err := writeEvents(filepath.Join(folder, "events.csv"), events); err != nil {
 			return err
 		}
-		d.print("\nWritten: %s and %s", filepath.Join(folder, "selection.yaml"), filepath.Join(folder, "events.csv"))
+		// A JSON text is a YAML text too.
+		detector, err := jsonform.Marshal(hall.Detector())
+		if err != nil {
+			return err
+		}
+		if err := os.WriteFile(filepath.Join(folder, "detector.yaml"), append(detector, '\n'), 0o644); err != nil { //nolint:gosec // as above
+			return err
+		}
+		d.print("\nWritten into %s: selection.yaml, events.csv and detector.yaml", folder)
 	}
 	d.print("\nWhat to try next:")
 	if folder == "" {

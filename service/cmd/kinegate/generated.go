@@ -26,7 +26,9 @@ type generated struct {
 	header  *kinegatev1.GenerationHeader
 	summary *kinegatev1.GenerationSummary
 	shown   []simulated
-	elapsed time.Duration
+	// measured tells that there is a detector.
+	measured bool
+	elapsed  time.Duration
 }
 
 // simulated is one event as it was and as it was measured.
@@ -111,6 +113,7 @@ func (g *generated) take(block *kinegatev1.GeneratedBlock) error {
 	if err != nil {
 		return err
 	}
+	g.measured = block.GetEvents() != nil
 	if room := g.show - len(g.shown); room > 0 {
 		g.shown = append(g.shown, events[:min(room, len(events))]...)
 	}
@@ -207,7 +210,7 @@ func (g *generated) report(file string) error {
 		overflows += fmt.Sprintf(", largest weight %.4g", s.GetLargestWeight())
 	}
 	t.Row("overflows", overflows)
-	if len(g.shown) > 0 && g.shown[0].seen != nil {
+	if g.measured {
 		t.Row("with an object seen", strconv.FormatInt(s.GetSeenEventCount(), 10))
 	}
 	for _, c := range g.header.GetChannels() {
