@@ -111,7 +111,7 @@ func TestAccessIsWithdrawn(t *testing.T) {
 	if took > 6*time.Second {
 		t.Errorf("the streams lived for %v", took)
 	}
-	t.Logf("streams ended %v after the file changed", took.Round(10*time.Millisecond))
+	t.Logf("FIGURE X4 streams ended %v after the file changed", took.Round(10*time.Millisecond))
 	wantReason(t, ask(trigger), api.CallerNotAllowed)
 	if err := ask(shift); err != nil {
 		t.Errorf("another caller: %v", err)

@@ -129,7 +129,7 @@ func TestRetriesAreThrottled(t *testing.T) {
 	for range calls {
 		ask()
 	}
-	t.Logf("%d attempts of the first 2 calls, %d of %d more", first, attempts.Load(), calls)
+	t.Logf("FIGURE T3 %d attempts of the first 2 calls, %d of %d more", first, attempts.Load(), calls)
 	if n := attempts.Load(); n > calls*12/10 {
 		t.Errorf("%d attempts of %d calls", n, calls)
 	}

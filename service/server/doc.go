@@ -15,14 +15,22 @@
 //
 // Every call passes front.answer, whose lines are the layers in their order: the
 // record (metrics and log) sees everything; below it a panic is contained; then the
-// caller is authorised, then admitted, before any work; last, the deadline is set and
-// the handler runs. Unary calls are registered as streams with one message each way,
+// caller is authorised, then admitted, before any work; last, the deadline is set, the
+// message received, its work admitted by cost, and the handler runs. What is open long
+// is authorised again every few seconds. Unary calls are registered as streams with one message each way,
 // which is what gRPC makes of them anyway: it lets one chain serve both, and it lets
 // bytes that do not decode, messages over the limit and unknown methods be answered
 // through the registry of reasons like all else.
 //
-// The transport refuses some calls before any of this and without an ErrorInfo:
-// messages above twice the limit, compressed messages, requests that are not gRPC.
+// The transport refuses some calls before any of this and without an ErrorInfo: messages
+// above twice the limit (RESOURCE_EXHAUSTED), compressed messages (UNIMPLEMENTED), lists
+// of headers over the limit (the stream or the connection ends), requests that are not
+// gRPC (an HTTP status). A deadline that the caller itself set passes in the caller.
+//
+// # Reload
+//
+// Settings that Setting.Reloads names, and the access file, are taken anew together: a
+// call keeps the inUse it began with.
 //
 // # Life
 //

@@ -79,22 +79,22 @@ type rules struct {
 func (f *front) RegisterService(desc *grpc.ServiceDesc, impl any) {
 	wrapped := *desc
 	wrapped.Methods, wrapped.Streams = nil, nil
-	add := func(name string, single bool, body func(srv any, c *call) error) {
+	add := func(name string, stream, single bool, body func(srv any, c *call) error) {
 		method := "/" + desc.ServiceName + "/" + name
 		wrapped.Streams = append(wrapped.Streams, grpc.StreamDesc{
 			StreamName: name, ClientStreams: true, ServerStreams: true,
-			Handler: func(srv any, stream grpc.ServerStream) error {
-				c := f.begin(method, method, stream)
-				c.single = single
+			Handler: func(srv any, transport grpc.ServerStream) error {
+				c := f.begin(method, method, transport)
+				c.stream, c.single = stream, single
 				return f.answer(c, func() error { return body(srv, c) })
 			},
 		})
 	}
 	for _, m := range desc.Methods {
-		add(m.MethodName, true, func(srv any, c *call) error { return f.unary(c, srv, m.Handler) })
+		add(m.MethodName, false, true, func(srv any, c *call) error { return f.unary(c, srv, m.Handler) })
 	}
 	for _, s := range desc.Streams {
-		add(s.StreamName, !s.ClientStreams, func(srv any, c *call) error {
+		add(s.StreamName, true, !s.ClientStreams, func(srv any, c *call) error {
 			f.streams.add(c, f)
 			defer f.streams.remove(c)
 			c.waiting = time.AfterFunc(f.streamIdle, func() {
@@ -223,15 +223,15 @@ func (f *front) begin(method, label string, stream grpc.ServerStream) *call {
 }
 
 // admit takes a place on the listener or refuses before any work. Health is never
-// refused: it is how a full server is told from a dead one.
+// refused: it is how a full server is told from a dead one. A server that leaves refuses
+// streams. It answers the few unary calls that arrive before their connections learn of
+// it: a burst of refusals would use up the clients' retries.
 func (f *front) admit(c *call) error {
 	if isHealth(c.label) {
 		return nil
 	}
-	select {
-	case <-f.leaving:
+	if c.stream && f.gone() {
 		return f.refuse(api.Refuse(api.ServerDraining, "this server is about to leave; another one will answer"))
-	default:
 	}
 	most := int64(f.rules.most(&c.use.options))
 	if open := f.open.Add(1); open > most {
@@ -246,6 +246,16 @@ func (f *front) admit(c *call) error {
 		}
 	}
 	return nil
+}
+
+// gone reports whether the notice of leaving is over.
+func (f *front) gone() bool {
+	select {
+	case <-f.leaving:
+		return true
+	default:
+		return false
+	}
 }
 
 // refuse counts a refusal for lack of room and says when to come back. A call whose

@@ -149,11 +149,19 @@ func TestStopDoesNotWaitForEver(t *testing.T) {
 	close(release)
 }
 
-func TestNewCallsAreRefusedWhileDraining(t *testing.T) {
+func TestNewStreamsAreRefusedWhileDraining(t *testing.T) {
 	r := start(t)
 	close(r.leaving) // as Shutdown does, with the listeners still open
-	_, err := kinegatev1.NewInfoServiceClient(r.general(t)).GetInfo(t.Context(), &kinegatev1.GetInfoRequest{})
+	stream, err := kinegatev1.NewSelectionServiceClient(r.general(t)).Judge(t.Context())
+	if err != nil {
+		t.Fatal(err)
+	}
+	_, err = stream.Recv()
 	wantReason(t, err, api.ServerDraining)
+	// Unary calls that are early enough to arrive are answered.
+	if _, err := kinegatev1.NewInfoServiceClient(r.general(t)).GetInfo(t.Context(), &kinegatev1.GetInfoRequest{}); err != nil {
+		t.Error(err)
+	}
 	if got := check(t, healthpb.NewHealthClient(r.general(t)), Liveness); got != healthpb.HealthCheckResponse_SERVING {
 		t.Errorf("liveness is %v", got)
 	}

@@ -1,0 +1,358 @@
+package server
+
+import (
+	"context"
+	"crypto/tls"
+	"errors"
+	"fmt"
+	"io"
+	"net"
+	"os"
+	"path/filepath"
+	"slices"
+	"sync"
+	"sync/atomic"
+	"testing"
+	"time"
+
+	"google.golang.org/genproto/googleapis/rpc/errdetails"
+	"google.golang.org/grpc"
+	"google.golang.org/grpc/credentials/insecure"
+	healthpb "google.golang.org/grpc/health/grpc_health_v1"
+	"google.golang.org/grpc/status"
+	"google.golang.org/protobuf/proto"
+
+	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+	"example.org/kinegate/service/api"
+)
+
+// operations skips a test that takes long, unless it was asked for: .ci/operations does.
+func operations(t *testing.T) {
+	t.Helper()
+	if os.Getenv("LONG_TESTS") == "" {
+		t.Skip("long: set LONG_TESTS, or run .ci/operations")
+	}
+}
+
+// figure reports a measured figure to .ci/operations.
+func figure(t *testing.T, format string, values ...any) {
+	t.Helper()
+	t.Logf("FIGURE "+format, values...)
+}
+
+// quantile is the q-quantile of durations, which it sorts.
+func quantile(d []time.Duration, q float64) time.Duration {
+	if len(d) == 0 {
+		return 0
+	}
+	slices.Sort(d)
+	return d[min(int(q*float64(len(d))), len(d)-1)]
+}
+
+// TestCertificateRotation swaps the folder of certificates 200 times as an orchestrator
+// does, by renaming a link, while callers make new connections: no handshake fails. Then
+// it waits for the watch to find a last swap by itself.
+func TestCertificateRotation(t *testing.T) {
+	operations(t)
+	const swaps = 200
+	a := newAuthority(t)
+	folder := t.TempDir()
+	swap := func(n int) {
+		t.Helper()
+		data := filepath.Join(folder, fmt.Sprint("data", n))
+		if err := os.Mkdir(data, 0o700); err != nil {
+			t.Fatal(err)
+		}
+		a.write(t, files{filepath.Join(data, "tls.crt"), filepath.Join(data, "tls.key"), filepath.Join(data, "ca.crt")})
+		link := filepath.Join(folder, "link")
+		if err := os.Symlink(data, link); err != nil {
+			t.Fatal(err)
+		}
+		if err := os.Rename(link, filepath.Join(folder, "current")); err != nil {
+			t.Fatal(err)
+		}
+	}
+	swap(0)
+	current := filepath.Join(folder, "current")
+	f := files{filepath.Join(current, "tls.crt"), filepath.Join(current, "tls.key"), filepath.Join(current, "ca.crt")}
+	r := start(t, onSockets, f.mutual)
+	chain, key := a.issue(t, "spiffe://example.org/trigger", time.Hour)
+	client := a.trusting(t, chain, key)
+	client.NextProtos = []string{"h2"}
+	handshake := func() (serial int64, err error) {
+		conn, err := tls.Dial("tcp", r.Addr(Gate).String(), client)
+		if err != nil {
+			return 0, err
+		}
+		defer func() { _ = conn.Close() }()
+		return conn.ConnectionState().PeerCertificates[0].SerialNumber.Int64(), nil
+	}
+	stop := make(chan struct{})
+	var made, failed atomic.Int64
+	var seen sync.Map
+	var all sync.WaitGroup
+	for range 3 {
+		all.Go(func() {
+			for {
+				select {
+				case <-stop:
+					return
+				default:
+				}
+				serial, err := handshake()
+				made.Add(1)
+				seen.Store(serial, true)
+				if err != nil {
+					failed.Add(1)
+					t.Errorf("handshake: %v", err)
+				}
+			}
+		})
+	}
+	all.Go(func() {
+		for {
+			select {
+			case <-stop:
+				return
+			case <-time.Tick(2 * time.Millisecond):
+				_, _ = r.certificates.reread() // between two files of a swap it keeps the old ones
+			}
+		}
+	})
+	for n := 1; n <= swaps; n++ {
+		swap(n)
+		time.Sleep(10 * time.Millisecond)
+	}
+	close(stop)
+	all.Wait()
+	served := 0
+	seen.Range(func(any, any) bool { served++; return true })
+	swap(swaps + 1)
+	begun, last := time.Now(), a.serial
+	for serial := int64(0); serial != last; time.Sleep(100 * time.Millisecond) {
+		var err error
+		if serial, err = handshake(); err != nil || time.Since(begun) > 15*time.Second {
+			t.Fatalf("serial %d, not %d, after %v: %v", serial, last, time.Since(begun), err)
+		}
+	}
+	figure(t, "X3 %d swaps, %d handshakes, %d failed, %d certificates seen; a last one served %.1f s after its swap",
+		swaps, made.Load(), failed.Load(), served, time.Since(begun).Seconds())
+	if served < swaps/4 {
+		t.Errorf("only %d certificates were served", served)
+	}
+}
+
+// TestDrainWithEverything drains a server on sockets that has stalled readers, watches of
+// health, half a handshake, and streams that go on: it ends in time, every block that it
+// read is answered, and each stream is told how far.
+func TestDrainWithEverything(t *testing.T) {
+	operations(t)
+	const stalls, watches, live = 5, 50, 8
+	standard := Defaults()
+	r := start(t, onSockets, func(o *Options, _ *Deps) { o.DrainNotice, o.DrainTime = standard.DrainNotice, standard.DrainTime })
+	connect := func(where Listener, more ...grpc.DialOption) *grpc.ClientConn {
+		conn, err := grpc.NewClient(r.Addr(where).String(), append(more, grpc.WithTransportCredentials(insecure.NewCredentials()))...)
+		if err != nil {
+			t.Fatal(err)
+		}
+		t.Cleanup(func() { _ = conn.Close() })
+		return conn
+	}
+	watching := connect(General)
+	for range watches {
+		if _, err := healthpb.NewHealthClient(watching).Watch(t.Context(), &healthpb.HealthCheckRequest{}); err != nil {
+			t.Fatal(err)
+		}
+	}
+	var dialer net.Dialer
+	half, err := dialer.DialContext(t.Context(), "tcp", r.Addr(Gate).String())
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer func() { _ = half.Close() }()
+	var answered, lost atomic.Int64
+	var all sync.WaitGroup
+	for range live {
+		stream := idleJudge(t, connect(Gate))
+		all.Go(func() {
+			n, err := judgeUntilDrained(stream)
+			answered.Add(n)
+			if err != nil {
+				lost.Add(1)
+				t.Error(err)
+			}
+		})
+	}
+	eventually(t, "events", func() bool { return r.metric(t, "kinegate_judge_events_total") > 10000 })
+	shut := make(chan error, 1)
+	begun := time.Now()
+	go func() { shut <- r.Shutdown(t.Context()) }()
+	// They stall when the notice is nearly over, or they would be gone before the drain.
+	time.Sleep(standard.DrainNotice - 3*time.Second)
+	for range stalls {
+		_ = stalled(t, connect(Gate, grpc.WithStaticStreamWindowSize(64<<10), grpc.WithStaticConnWindowSize(64<<10)))
+	}
+	if err := <-shut; err != nil {
+		t.Errorf("Shutdown: %v", err)
+	}
+	took := time.Since(begun)
+	all.Wait()
+	figure(t, "L1 %.1f s with %d stalled readers, %d watches, half a handshake and %d live streams; %d blocks answered, %d streams with unanswered ones",
+		took.Seconds(), stalls, watches, live, answered.Load(), lost.Load())
+	if took > 31*time.Second {
+		t.Errorf("took %v", took)
+	}
+}
+
+// judgeUntilDrained keeps blocks under way until the server says goodbye, and holds its
+// last word against the verdicts that came.
+func judgeUntilDrained(stream judgeClient) (answered int64, err error) {
+	next := int64(0)
+	ask := func() {
+		block := pairBlock(next, 100)
+		next++
+		// A server that drains reads no more; what it has read is what counts.
+		_ = stream.Send(&kinegatev1.JudgeRequest{Frame: &kinegatev1.JudgeRequest_Block{Block: block}})
+	}
+	for range 4 {
+		ask()
+	}
+	for {
+		response, err := stream.Recv()
+		if err != nil {
+			return answered, fmt.Errorf("no goodbye after %d verdicts: %w", answered, err)
+		}
+		if v := response.GetVerdict(); v != nil {
+			if v.GetSequence() != answered {
+				return answered, fmt.Errorf("verdict %d after %d", v.GetSequence(), answered-1)
+			}
+			answered++
+			ask()
+		}
+		if d := response.GetDraining(); d != nil {
+			if d.GetAnsweredSequence() != answered-1 {
+				return answered, fmt.Errorf("told %d, answered up to %d", d.GetAnsweredSequence(), answered-1)
+			}
+			for err == nil {
+				_, err = stream.Recv()
+			}
+			if !errors.Is(err, io.EOF) {
+				err = nil // the status of a drained stream is not what this test is about
+			}
+			return answered, nil
+		}
+	}
+}
+
+// holding is a service whose every block takes its slot for a while. It waits instead of
+// computing, so that the figures show the admission and not how busy the machine is
+// otherwise.
+type holding struct {
+	kinegatev1.UnimplementedSelectionServiceServer
+
+	work time.Duration
+}
+
+func (h holding) JudgeBlock(context.Context, *kinegatev1.JudgeBlockRequest) (*kinegatev1.JudgeBlockResponse, error) {
+	time.Sleep(h.work)
+	return &kinegatev1.JudgeBlockResponse{}, nil
+}
+
+// TestOverload offers work at 1, 2, 5 and 10 times what two slots can do, whether or not
+// the answers come: goodput stays, what is admitted stays fast, what is not is refused
+// at once, and the server recovers.
+func TestOverload(t *testing.T) {
+	operations(t)
+	const work, slots, span = 20 * time.Millisecond, 2, 10 * time.Second
+	r := prepare(t, func(o *Options, _ *Deps) { o.WorkSlots, o.CallerCalls = slots, o.ConnectionStreams })
+	old := r.fronts[General]
+	f := newFront(old.desk, old.rules, r.serverOptions(r.options.GeneralStreamWindow, r.options.GeneralConnectionWindow))
+	kinegatev1.RegisterSelectionServiceServer(f, holding{work: work})
+	healthpb.RegisterHealthServer(f, r.health)
+	r.fronts[General] = f
+	r.serve(t)
+	var conns []*grpc.ClientConn
+	for range 4 {
+		conns = append(conns, r.general(t))
+	}
+	request, err := proto.Marshal(&kinegatev1.JudgeBlockRequest{Block: &kinegatev1.EventBlock{ObjectClasses: make([]byte, 8192)}})
+	if err != nil {
+		t.Fatal(err)
+	}
+	rate := func(times float64, span time.Duration) overloaded {
+		return offer(t, conns, request, slots*times/work.Seconds(), span)
+	}
+	idle := rate(0.1, 5*time.Second)
+	figure(t, "T2 idle: admitted p99 %.1f ms", ms(quantile(idle.admitted, 0.99)))
+	peak := 0.0
+	for _, times := range []float64{1, 2, 5, 10} {
+		got := rate(times, span)
+		goodput := float64(len(got.admitted)) / span.Seconds()
+		peak = max(peak, goodput)
+		figure(t, "T2 offered %gx: %.0f calls/s sent, goodput %.0f/s, admitted p99 %.1f ms, rejected p50 %.2f p99 %.2f ms, other %d",
+			times, float64(got.sent)/span.Seconds(), goodput, ms(quantile(got.admitted, 0.99)),
+			ms(quantile(got.rejected, 0.5)), ms(quantile(got.rejected, 0.99)), got.other)
+		if times == 10 && goodput < 0.9*peak {
+			t.Errorf("goodput %.0f of %.0f", goodput, peak)
+		}
+		if got.other > 0 {
+			t.Errorf("%d calls neither answered nor refused as overload", got.other)
+		}
+	}
+	after := rate(0.1, 2*time.Second)
+	figure(t, "T2 after the load: %d of %d calls answered, p99 %.1f ms", len(after.admitted), after.sent, ms(quantile(after.admitted, 0.99)))
+	if len(after.rejected) > after.sent/10 {
+		t.Errorf("%d of %d calls refused after the load", len(after.rejected), after.sent)
+	}
+}
+
+func ms(d time.Duration) float64 { return float64(d) / float64(time.Millisecond) }
+
+// overloaded is what came of offered calls.
+type overloaded struct {
+	sent, other        int
+	admitted, rejected []time.Duration
+}
+
+// offer sends calls at a rate without waiting for answers.
+func offer(t *testing.T, conns []*grpc.ClientConn, request []byte, rate float64, span time.Duration) overloaded {
+	t.Helper()
+	var mu sync.Mutex
+	var all sync.WaitGroup
+	var o overloaded
+	begun := time.Now()
+	for time.Since(begun) < span {
+		due := int(time.Since(begun).Seconds() * rate)
+		for ; o.sent < due; o.sent++ {
+			conn := conns[o.sent%len(conns)]
+			all.Go(func() {
+				start := time.Now()
+				err := rawly(t.Context(), conn, kinegatev1.SelectionService_JudgeBlock_FullMethodName, request)
+				took := time.Since(start)
+				mu.Lock()
+				defer mu.Unlock()
+				switch {
+				case err == nil:
+					o.admitted = append(o.admitted, took)
+				case isReason(err, api.ServerOverloaded):
+					o.rejected = append(o.rejected, took)
+				default:
+					o.other++
+				}
+			})
+		}
+		time.Sleep(time.Millisecond)
+	}
+	all.Wait()
+	return o
+}
+
+// isReason reports whether an error carries a reason.
+func isReason(err error, want api.Reason) bool {
+	for _, d := range status.Convert(err).Details() {
+		if info, ok := d.(*errdetails.ErrorInfo); ok && info.GetReason() == string(want) {
+			return true
+		}
+	}
+	return false
+}
