@@ -45,6 +45,7 @@ var homes = map[string][]string{
 	"golang.org/x/sys":            {"service"},
 	"go.yaml.in/yaml":             {"service"},
 	"gonum.org/v1/gonum":          {"service/cmd/kinegate/internal/plot"},
+	"gonum.org/v1/plot":           {"service/cmd/kinegate/internal/plot"},
 	"github.com/google/go-cmp":    {},
 	"google.golang.org/grpc/test": {},
 	"github.com/prometheus/client_golang/prometheus/testutil": {},
