@@ -103,9 +103,8 @@ def main() -> None:
         few = sample.cut(0, min(count, 20_000))
         single, _, _, _ = measure(server, few, 1, "none")
         ratio = single / len(few) / (wall / count)
-        print(
-            f"  one event a message: {single / len(few) * 1e6:.0f} us an event, {ratio:.0f} times slower"
-        )
+        each = single / len(few) * 1e6
+        print(f"  one event a message: {each:.0f} us an event, {ratio:.0f} times slower")
 
 
 if __name__ == "__main__":

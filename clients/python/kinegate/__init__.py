@@ -41,6 +41,8 @@ from kinegate.errors import (
     UsageError,
 )
 from kinegate.events import COORDINATES, NEGATIVE, NEUTRAL, PHOTON, POSITIVE, Events
+from kinegate.generation import Generated, GenerationCheck, GenerationLike, Truth
+from kinegate.generationstream import AsyncGenerationStream, GenerationStream
 from kinegate.info import Info
 from kinegate.initial import Beams
 from kinegate.motion import Motion
@@ -71,6 +73,7 @@ __all__ = [
     "POSITIVE",
     "Answer",
     "AsyncClient",
+    "AsyncGenerationStream",
     "AsyncJudgeStream",
     "BeamCandidates",
     "Beams",
@@ -86,6 +89,10 @@ __all__ = [
     "Events",
     "FailedPrecondition",
     "FieldViolation",
+    "Generated",
+    "GenerationCheck",
+    "GenerationLike",
+    "GenerationStream",
     "Hypothesis",
     "Info",
     "Internal",
@@ -116,6 +123,7 @@ __all__ = [
     "StreamBroken",
     "Stubs",
     "Table",
+    "Truth",
     "TwoBody",
     "Unauthenticated",
     "Unavailable",

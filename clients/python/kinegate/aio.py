@@ -9,6 +9,7 @@ import time
 import weakref
 from collections import deque
 from collections.abc import AsyncIterable
+from pathlib import Path
 from typing import TYPE_CHECKING, Any, Concatenate, ParamSpec, Self, TypeVar
 
 import grpc
@@ -16,6 +17,8 @@ import grpc
 from kinegate import errors, questions
 from kinegate.client import described, target
 from kinegate.events import Events
+from kinegate.generation import GenerationLike, sample
+from kinegate.generationstream import AsyncGenerationStream
 from kinegate.judge import Protocol, Settings, pause
 from kinegate.progress import Bar
 from kinegate.selection import Selection, SelectionLike
@@ -120,6 +123,7 @@ class AsyncClient:
     photon_field = _asks(questions.photon_field)
     info = _asks(questions.info)
     check = _asks(questions.check)
+    check_generation = _asks(questions.check_generation)
 
     async def selection(self, source: SelectionLike) -> Selection:
         """Check a selection and return it ready to judge with."""
@@ -133,6 +137,32 @@ class AsyncClient:
         """Judge one block of events, at most 4,096, without opening a stream."""
         chosen = await self.selection(selection)
         return await self.ask(chosen.judging(events, entries))
+
+    async def generate(
+        self,
+        source: GenerationLike,
+        count: int,
+        *,
+        first: int = 0,
+        truth: bool = True,
+        events_per_block: int = 0,
+        patience: float = 60.0,
+        progress: bool = False,
+    ) -> AsyncGenerationStream:
+        """Generate simulated events: `async for part in await client.generate(...)`.
+
+        Arguments as for :meth:`kinegate.Client.generate`.
+        """
+        chosen = source
+        if isinstance(source, (str, Path)):
+            chosen = (await self.check_generation(source)).generation()
+        wanted = sample(chosen, count, first, truth=truth, events_per_block=events_per_block)
+
+        def call(request: Any) -> Any:
+            return self.stubs.generation.GenerateEvents(request, wait_for_ready=True)
+
+        address = self._target.address
+        return AsyncGenerationStream(wanted, call, address, patience, progress=progress)
 
     def judge(
         self,

@@ -6,11 +6,14 @@ import copy
 import functools
 import inspect
 import weakref
+from pathlib import Path
 from typing import TYPE_CHECKING, Any, Concatenate, ParamSpec, Self, TypeVar
 
 import grpc
 
 from kinegate import errors, questions
+from kinegate.generation import GenerationLike, sample
+from kinegate.generationstream import GenerationStream
 from kinegate.judge import Settings
 from kinegate.selection import Selection, SelectionLike
 from kinegate.stream import JudgeStream
@@ -142,6 +145,7 @@ class Client:
     photon_field = _asks(questions.photon_field)
     info = _asks(questions.info)
     check = _asks(questions.check)
+    check_generation = _asks(questions.check_generation)
 
     def selection(self, source: SelectionLike) -> Selection:
         """Check a selection and return it ready to judge with.
@@ -176,6 +180,48 @@ class Client:
         """
         chosen = self.selection(selection)
         return self.ask(chosen.judging(events, entries))
+
+    def generate(
+        self,
+        source: GenerationLike,
+        count: int,
+        *,
+        first: int = 0,
+        truth: bool = True,
+        events_per_block: int = 0,
+        patience: float = 60.0,
+        progress: bool = False,
+    ) -> GenerationStream:
+        """Generate simulated events; iterate over the stream for its blocks.
+
+        Event i of a generation is the same event, to the bit, whatever call made it: a
+        broken stream goes on where it ended.
+
+        Args:
+            source: A YAML file or its text, a mapping in the same form, or a message.
+            count: Number of events.
+            first: Number of the first event.
+            truth: Also return the events as they were, without a detector always.
+            events_per_block: Most events a block; 0 for as many as fit.
+            patience: Seconds without a block after which a broken stream is given up.
+            progress: Show a bar on standard error.
+
+        >>> stream = client.generate(
+        ...     {"seed": 1, "channels": [{"reaction": "omega -> pi0 gamma, pi0 -> gamma gamma"}]},
+        ...     1000)
+        >>> energies = [part.truth.momentum["energy_gev"] for part in stream]
+        >>> sum(map(len, energies))  # pi0, gamma, gamma and gamma of each
+        4000
+        """
+        chosen = source
+        if isinstance(source, (str, Path)):
+            chosen = self.check_generation(source).generation()
+        wanted = sample(chosen, count, first, truth=truth, events_per_block=events_per_block)
+
+        def call(request: Any) -> Any:
+            return self.stubs.generation.GenerateEvents(request, wait_for_ready=True)
+
+        return GenerationStream(wanted, call, self._target.address, patience, progress=progress)
 
     def judge(  # noqa: PLR0913  # each is a choice of its own
         self,

@@ -2,6 +2,7 @@
 
 from kinegate.dalitz import dalitz
 from kinegate.decay import decay
+from kinegate.generation import check_generation
 from kinegate.info import info
 from kinegate.motion import motion
 from kinegate.openchannels import open_channels
@@ -13,6 +14,7 @@ from kinegate.twobody import two_body
 
 __all__ = [
     "check",
+    "check_generation",
     "dalitz",
     "decay",
     "info",

@@ -6,6 +6,7 @@ from typing import TYPE_CHECKING, Any, Final
 
 from kinegate.v1 import (
     decay_pb2_grpc,
+    generation_pb2_grpc,
     info_pb2_grpc,
     particle_pb2_grpc,
     photon_pb2_grpc,
@@ -23,6 +24,7 @@ _FIELDS: Final = {
     "ReactionService": "reaction",
     "DecayService": "decay",
     "PhotonService": "photon",
+    "GenerationService": "generation",
     "SelectionService": "selection",
     "InfoService": "info",
 }
@@ -42,6 +44,8 @@ class Stubs:
         """DecayService."""
         self.photon = photon_pb2_grpc.PhotonServiceStub(plain)
         """PhotonService."""
+        self.generation = generation_pb2_grpc.GenerationServiceStub(plain)
+        """GenerationService."""
         self.selection = selection_pb2_grpc.SelectionServiceStub(plain)
         """SelectionService."""
         self.info = info_pb2_grpc.InfoServiceStub(plain)

@@ -26,8 +26,8 @@ DEFAULT_GATE_ADDRESS: Final = "127.0.0.1:8470"
 DEFAULT_TIMEOUT: Final = 10.0
 """Deadline of a call in second."""
 
-# The judge stream is kept out of the retry policy: a transport that replays its frames
-# would judge events twice.
+# Streams are kept out of the retry policy: the helpers resume them, and a transport that
+# replays the frames of a judge stream would judge events twice.
 _UNARY: Final = (
     "ParticleService",
     "ReactionService",
@@ -42,6 +42,10 @@ _SERVICE_CONFIG: Final = {
         {
             "name": [
                 *({"service": f"kinegate.v1.{name}"} for name in _UNARY),
+                *(
+                    {"service": "kinegate.v1.GenerationService", "method": name}
+                    for name in ("CheckGeneration", "CheckDetector", "MeasureBound")
+                ),
                 {"service": "kinegate.v1.SelectionService", "method": "CheckSelection"},
                 {"service": "kinegate.v1.SelectionService", "method": "JudgeBlock"},
             ],
@@ -55,7 +59,10 @@ _SERVICE_CONFIG: Final = {
             },
         },
         {
-            "name": [{"service": "kinegate.v1.SelectionService", "method": "Judge"}],
+            "name": [
+                {"service": "kinegate.v1.SelectionService", "method": "Judge"},
+                {"service": "kinegate.v1.GenerationService", "method": "GenerateEvents"},
+            ],
             "waitForReady": True,
         },
     ],

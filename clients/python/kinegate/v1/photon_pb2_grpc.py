@@ -30,7 +30,9 @@ class PhotonServiceStub(object):
     """PhotonService answers for processes with real photons. Left out everywhere:
     higher orders and the radiation of further photons, the weak interaction,
     structure and resonances (leptons and scalars are points), binding of electrons,
-    and fields so strong that several laser photons act at once.
+    and fields so strong that several laser photons act at once. Energies, masses,
+    densities and lengths lie within 1e-100 to 1e100 in their units, or are 0 where 0 is
+    allowed.
     """
 
     def __init__(self, channel):
@@ -55,7 +57,9 @@ class PhotonServiceServicer(object):
     """PhotonService answers for processes with real photons. Left out everywhere:
     higher orders and the radiation of further photons, the weak interaction,
     structure and resonances (leptons and scalars are points), binding of electrons,
-    and fields so strong that several laser photons act at once.
+    and fields so strong that several laser photons act at once. Energies, masses,
+    densities and lengths lie within 1e-100 to 1e100 in their units, or are 0 where 0 is
+    allowed.
     """
 
     def DescribePhotonProcess(self, request, context):
@@ -101,7 +105,9 @@ class PhotonService(object):
     """PhotonService answers for processes with real photons. Left out everywhere:
     higher orders and the radiation of further photons, the weak interaction,
     structure and resonances (leptons and scalars are points), binding of electrons,
-    and fields so strong that several laser photons act at once.
+    and fields so strong that several laser photons act at once. Energies, masses,
+    densities and lengths lie within 1e-100 to 1e100 in their units, or are 0 where 0 is
+    allowed.
     """
 
     @staticmethod

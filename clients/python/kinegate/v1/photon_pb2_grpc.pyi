@@ -34,7 +34,9 @@ class PhotonServiceStub:
     """PhotonService answers for processes with real photons. Left out everywhere:
     higher orders and the radiation of further photons, the weak interaction,
     structure and resonances (leptons and scalars are points), binding of electrons,
-    and fields so strong that several laser photons act at once.
+    and fields so strong that several laser photons act at once. Energies, masses,
+    densities and lengths lie within 1e-100 to 1e100 in their units, or are 0 where 0 is
+    allowed.
     """
 
     @_typing.overload
@@ -57,7 +59,9 @@ class PhotonServiceAsyncStub(PhotonServiceStub):
     """PhotonService answers for processes with real photons. Left out everywhere:
     higher orders and the radiation of further photons, the weak interaction,
     structure and resonances (leptons and scalars are points), binding of electrons,
-    and fields so strong that several laser photons act at once.
+    and fields so strong that several laser photons act at once. Energies, masses,
+    densities and lengths lie within 1e-100 to 1e100 in their units, or are 0 where 0 is
+    allowed.
     """
 
     def __init__(self, channel: _aio.Channel) -> None: ...
@@ -76,7 +80,9 @@ class PhotonServiceServicer(metaclass=_abc_1.ABCMeta):
     """PhotonService answers for processes with real photons. Left out everywhere:
     higher orders and the radiation of further photons, the weak interaction,
     structure and resonances (leptons and scalars are points), binding of electrons,
-    and fields so strong that several laser photons act at once.
+    and fields so strong that several laser photons act at once. Energies, masses,
+    densities and lengths lie within 1e-100 to 1e100 in their units, or are 0 where 0 is
+    allowed.
     """
 
     @_abc_1.abstractmethod

@@ -1,4 +1,5 @@
 from kinegate.v1 import event_pb2 as _event_pb2
+from kinegate.v1 import fault_pb2 as _fault_pb2
 from kinegate.v1 import info_pb2 as _info_pb2
 from kinegate.v1 import kinematics_pb2 as _kinematics_pb2
 from kinegate.v1 import reaction_pb2 as _reaction_pb2
@@ -368,24 +369,12 @@ class CheckSelectionResponse(_message.Message):
     SELECTION_DIGEST_FIELD_NUMBER: _ClassVar[int]
     HYPOTHESES_FIELD_NUMBER: _ClassVar[int]
     LARGEST_REPLY_BYTE_COUNT_FIELD_NUMBER: _ClassVar[int]
-    faults: _containers.RepeatedCompositeFieldContainer[SelectionFault]
+    faults: _containers.RepeatedCompositeFieldContainer[_fault_pb2.FieldFault]
     selection: Selection
     selection_digest: str
     hypotheses: _containers.RepeatedCompositeFieldContainer[HypothesisOutline]
     largest_reply_byte_count: int
-    def __init__(self, faults: _Optional[_Iterable[_Union[SelectionFault, _Mapping]]] = ..., selection: _Optional[_Union[Selection, _Mapping]] = ..., selection_digest: _Optional[str] = ..., hypotheses: _Optional[_Iterable[_Union[HypothesisOutline, _Mapping]]] = ..., largest_reply_byte_count: _Optional[int] = ...) -> None: ...
-
-class SelectionFault(_message.Message):
-    __slots__ = ("field", "message", "line", "column")
-    FIELD_FIELD_NUMBER: _ClassVar[int]
-    MESSAGE_FIELD_NUMBER: _ClassVar[int]
-    LINE_FIELD_NUMBER: _ClassVar[int]
-    COLUMN_FIELD_NUMBER: _ClassVar[int]
-    field: str
-    message: str
-    line: int
-    column: int
-    def __init__(self, field: _Optional[str] = ..., message: _Optional[str] = ..., line: _Optional[int] = ..., column: _Optional[int] = ...) -> None: ...
+    def __init__(self, faults: _Optional[_Iterable[_Union[_fault_pb2.FieldFault, _Mapping]]] = ..., selection: _Optional[_Union[Selection, _Mapping]] = ..., selection_digest: _Optional[str] = ..., hypotheses: _Optional[_Iterable[_Union[HypothesisOutline, _Mapping]]] = ..., largest_reply_byte_count: _Optional[int] = ...) -> None: ...
 
 class HypothesisOutline(_message.Message):
     __slots__ = ("name", "reaction", "products", "observables")
