@@ -35,6 +35,10 @@ type generationStream struct {
 	perBlock  int
 	truthless bool
 	lastSent  time.Time
+	pace      pace
+	// turning tells that the stream has a turn, and turnBegun since when.
+	turning   bool
+	turnBegun time.Time
 	seen      int64
 
 	// of the block being made
@@ -58,16 +62,27 @@ func newGenerationStream(
 	if g.perBlock == 0 {
 		g.perBlock = event.MaxEvents
 	}
-	ctx := stream.Context()
-	var pace pace
-	g.worker.Stop = func() bool {
-		if s.turns.yields {
-			pace.rest()
-		}
-		return ctx.Err() != nil
-	}
+	g.worker.Stop = g.stop
 	return g
 }
+
+// stop looks up within an event: one with a bound far too high takes a tenth of a second
+// and more, and others wait for its turn.
+func (g *generationStream) stop() bool {
+	ctx, turns := g.stream.Context(), g.service.turns
+	if turns.yields {
+		g.pace.rest()
+	}
+	if g.turning && time.Since(g.turnBegun) > longestTurn {
+		turns.giveBack()
+		g.turning = turns.take(ctx) == nil
+		g.turnBegun = time.Now()
+	}
+	return !g.turning || ctx.Err() != nil
+}
+
+// longestTurn is how long an event keeps a turn while others may wait for it.
+const longestTurn = 2 * time.Millisecond
 
 // run sends the header, the blocks and the summary. Nothing is made ahead of what the
 // caller takes: sending waits for room.
@@ -136,7 +151,12 @@ func (g *generationStream) turn(ctx context.Context, size int) (grown int, full 
 	if err := turns.take(ctx); err != nil {
 		return size, false, err
 	}
-	defer turns.giveBack()
+	g.turning, g.turnBegun = true, time.Now()
+	defer func() {
+		if g.turning {
+			turns.giveBack()
+		}
+	}()
 	for range generatedPerTurn {
 		g.worker.Event(g.next, &g.truth)
 		if err := ctx.Err(); err != nil {
