@@ -41,12 +41,11 @@ func TestChecksConstrainedFit(t *testing.T) {
 // forcedToSum fits measurements whose sum is known.
 func forcedToSum(t *testing.T, c reference.Check) ([]float64, constraint.Result) {
 	t.Helper()
-	measured, sigma, sum := []float64(nil), []float64(nil), 0.0
+	suffix, sum := "", 60.0
 	if c.Has("measured_deg") {
-		measured, sigma, sum = c.Floats("measured_deg"), c.Floats("sigma_deg"), 180
-	} else {
-		measured, sigma, sum = c.Floats("measured"), c.Floats("sigma"), 60
+		suffix, sum = "_deg", 180
 	}
+	measured, sigma := c.Floats("measured"+suffix), c.Floats("sigma"+suffix)
 	spec := &constraint.Spec{Conserved: constraint.X, Known: momentum.Four{P: momentum.Three{X: sum}}}
 	for range measured {
 		spec.Objects = append(spec.Objects, object(0))

@@ -160,12 +160,13 @@ func balanceOf(c Components) []component {
 	if c&Y != 0 {
 		rows = append(rows, balanceY)
 	}
-	switch c & (Z | Energy) {
-	case Z | Energy:
+	z, energy := c&Z != 0, c&Energy != 0
+	switch {
+	case z && energy:
 		rows = append(rows, balanceMinus, balancePlus)
-	case Z:
+	case z:
 		rows = append(rows, balanceZ)
-	case Energy:
+	case energy:
 		rows = append(rows, balanceEnergy)
 	}
 	return rows

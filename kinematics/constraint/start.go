@@ -36,7 +36,7 @@ func (f *Fitter) begin() {
 	}
 	f.evaluate()
 	if missing > 0 {
-		f.share(missing)
+		f.share()
 		f.balance()
 	}
 	if others || missing > 1 {
@@ -73,7 +73,7 @@ func (b *body) beginOf(typical float64) bool {
 }
 
 // share gives each missing object an equal part of the momentum that is missing.
-func (f *Fitter) share(missing int) {
+func (f *Fitter) share() {
 	p := f.problem
 	lack := p.known
 	sign := 0.0

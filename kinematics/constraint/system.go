@@ -42,9 +42,6 @@ func newSystem(p *Problem) system {
 	return s
 }
 
-// unit is the natural unit of a variable.
-func (s *system) unit(v int) float64 { return s.scale[v] }
-
 // assemble writes the system at the current point with a part, from 0 to 1, of the
 // second derivatives, and scales it. The pulls are set unless part is 0.
 func (f *Fitter) assemble(part float64) {

@@ -263,7 +263,7 @@ func (y *toy) measure(m *constraint.Measurement, o *constraint.Object, p momentu
 	seen := p.P
 	if o.Repointed {
 		u := p.P.Unit()
-		hit := momentum.Three{Z: z}.Add(u.Scale(math.Sqrt(1-float64((z-float64(z*u.Z))*(z+float64(z*u.Z))))-float64(z*u.Z)))
+		hit := momentum.Three{Z: z}.Add(u.Scale(math.Sqrt(1-float64((z-float64(z*u.Z))*(z+float64(z*u.Z)))) - float64(z*u.Z)))
 		m.Origin, m.Cluster, seen = momentum.Three{}, hit, hit
 	}
 	theta, phi := seen.Theta(), seen.Phi()

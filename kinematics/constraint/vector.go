@@ -9,11 +9,6 @@ func (c *vector) on(v *vector) float64 {
 	return float64(c[0]*v[0]) + float64(c[1]*v[1]) + float64(c[2]*v[2]) + float64(c[3]*v[3])
 }
 
-// on3 does the same for the components of the momentum.
-func (c *vector) on3(v *[3]float64) float64 {
-	return float64(c[0]*v[0]) + float64(c[1]*v[1]) + float64(c[2]*v[2])
-}
-
 // lowered returns the covector of v: energy, and the momentum with the other sign.
 func (c *vector) lowered(scale float64) vector {
 	return vector{-scale * c[0], -scale * c[1], -scale * c[2], scale * c[3]}
