@@ -171,3 +171,17 @@ func TestBadFolderRefusesToStart(t *testing.T) {
 		}
 	}
 }
+
+// TestFolderIsWatched: a new file of the folder is found without being told.
+func TestFolderIsWatched(t *testing.T) {
+	path := t.TempDir()
+	r := start(t, func(o *Options, _ *Deps) { o.SelectionFolder = path })
+	put(t, filepath.Join(path, "pairs.yaml"), pairsFile("pairs", 0.16))
+	eventually(t, "the new selection", func() bool {
+		return strings.Contains(r.log.String(), `"selection":"pairs"`)
+	})
+	_, opened := openJudge(t, r, namedPairs(false))
+	if len(opened.GetSelectionDigest()) != 64 {
+		t.Errorf("opened %v", opened)
+	}
+}

@@ -232,6 +232,9 @@ func (s *Server) Serve(ctx context.Context) error {
 	if s.certificates != nil {
 		go s.contained("watching certificate files", func() { s.certificates.watch(ctx) })
 	}
+	if s.folder != nil {
+		go s.contained("watching selections", func() { s.folder.watch(ctx) })
+	}
 	go s.contained("watching settings", func() { s.watchSettings(ctx) })
 	go s.contained("watching streams", func() { s.streams.watch(ctx) })
 	failed := make(chan error, len(s.fronts)+len(s.webs))

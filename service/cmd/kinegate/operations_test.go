@@ -43,7 +43,7 @@ type replica struct {
 func freePorts(t *testing.T) (ports [4]int) {
 	t.Helper()
 	for i := range ports {
-		l, err := net.Listen("tcp", "127.0.0.1:0") //nolint:noctx // closed at once
+		l, err := net.Listen("tcp", "127.0.0.1:0")
 		if err != nil {
 			t.Fatal(err)
 		}
