@@ -188,21 +188,7 @@ func hallBlock(events []hall.Event) *kinegatev1.EventBlock {
 func (d *demo) next(events []hall.Event) error {
 	folder := d.keep
 	if folder != "" {
-		if err := os.MkdirAll(folder, 0o755); err != nil { //nolint:gosec // files to look at
-			return err
-		}
-		if err := os.WriteFile(filepath.Join(folder, "selection.yaml"), []byte(hall.Selection), 0o644); err != nil { //nolint:gosec // as above
-			return err
-		}
-		if err := writeEvents(filepath.Join(folder, "events.csv"), events); err != nil {
-			return err
-		}
-		// A JSON text is a YAML text too.
-		detector, err := jsonform.Marshal(hall.Detector())
-		if err != nil {
-			return err
-		}
-		if err := os.WriteFile(filepath.Join(folder, "detector.yaml"), append(detector, '\n'), 0o644); err != nil { //nolint:gosec // as above
+		if err := keepFiles(folder, events); err != nil {
 			return err
 		}
 		d.print("\nWritten into %s: selection.yaml, events.csv and detector.yaml", folder)
@@ -219,6 +205,24 @@ func (d *demo) next(events []hall.Event) error {
 	d.print("  kinegate serve                       run the server for others; kinegate serve --help lists its settings")
 	d.print("\n%s", api.Caution)
 	return nil
+}
+
+// keepFiles writes the selection, the detector and the events into a folder.
+func keepFiles(folder string, events []hall.Event) error {
+	if err := os.MkdirAll(folder, 0o755); err != nil { //nolint:gosec // files to look at
+		return err
+	}
+	// A JSON text is a YAML text too.
+	detector, err := jsonform.Marshal(hall.Detector())
+	if err != nil {
+		return err
+	}
+	for name, text := range map[string][]byte{"selection.yaml": []byte(hall.Selection), "detector.yaml": append(detector, '\n')} {
+		if err := os.WriteFile(filepath.Join(folder, name), text, 0o644); err != nil { //nolint:gosec // as above
+			return err
+		}
+	}
+	return writeEvents(filepath.Join(folder, "events.csv"), events)
 }
 
 // writeEvents keeps the events with their true channels.

@@ -3,7 +3,6 @@ package main
 import (
 	"bufio"
 	"errors"
-	"fmt"
 	"os"
 	"path/filepath"
 	"strconv"
@@ -172,6 +171,10 @@ const (
 	columnBeam
 	columnNumber
 	columnParticle // energy, px, py, pz, mass
+)
+
+// Those behind the five numbers of a particle.
+const (
 	columnDecayed  = columnParticle + 5
 	columnClass    = columnDecayed + 1
 	columnObject   = columnClass + 1 // momentum, theta, phi
@@ -242,5 +245,5 @@ func (s *parquetSink) add(header *kinegatev1.GenerationHeader, _ *kinegatev1.Gen
 }
 
 func (s *parquetSink) finish() error {
-	return errors.Join(s.writer.Close(fmt.Sprintf("kinegate %s", version())), s.close())
+	return errors.Join(s.writer.Close("kinegate "+version()), s.close())
 }

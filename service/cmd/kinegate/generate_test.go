@@ -94,7 +94,7 @@ func TestGenerateCSV(t *testing.T) {
 			}
 		}
 		coordinates, want := readBlocks(t, kgb)
-		file, err := os.Open(csv) //nolint:gosec // a file of the test
+		file, err := os.Open(csv)
 		if err != nil {
 			t.Fatal(err)
 		}
@@ -128,7 +128,7 @@ func TestGenerateCSV(t *testing.T) {
 
 func readBlocks(t *testing.T, name string) (kinegate.Coordinates, []kinegate.Measured) {
 	t.Helper()
-	file, err := os.Open(name) //nolint:gosec // a file of the test
+	file, err := os.Open(name)
 	if err != nil {
 		t.Fatal(err)
 	}

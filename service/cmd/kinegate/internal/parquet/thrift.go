@@ -33,7 +33,7 @@ func (c *compact) end() {
 // field writes the head of a field. The format's own numbers are at most 15 apart.
 func (c *compact) field(number, kind int) {
 	top := len(c.last) - 1
-	c.data = append(c.data, byte((number-c.last[top])<<4|kind))
+	c.data = append(c.data, byte((number-c.last[top])<<4|kind)) //nolint:gosec // two numbers of four bits
 	c.last[top] = number
 }
 
@@ -63,9 +63,9 @@ func (c *compact) list(number, kind, n int) {
 	c.field(number, typeList)
 	const short = 15
 	if n < short {
-		c.data = append(c.data, byte(n<<4|kind))
+		c.data = append(c.data, byte(n<<4|kind)) //nolint:gosec // two numbers of four bits
 		return
 	}
-	c.data = append(c.data, byte(short<<4|kind))
-	c.varint(uint64(n)) //nolint:gosec // a length
+	c.data = append(c.data, byte(short<<4|kind)) //nolint:gosec // two numbers of four bits
+	c.varint(uint64(n))
 }
