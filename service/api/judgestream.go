@@ -165,7 +165,7 @@ func (j *judgeStream) watch(read, written <-chan error) ending {
 func (j *judgeStream) abandon(written <-chan error, readErr error) error {
 	if j.connection.Close != nil {
 		j.connection.Close()
-		_ = <-written
+		<-written //nolint:errcheck // only its end matters
 	}
 	if readErr != nil {
 		return readErr

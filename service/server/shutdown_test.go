@@ -63,7 +63,7 @@ func TestDrainLetsCallsFinish(t *testing.T) {
 	select {
 	case err := <-done:
 		t.Fatalf("the server left while a call was under way: %v", err)
-	case <-time.After(50 * time.Millisecond): //nolint:forbidigo // a test may leak a timer
+	case <-time.After(50 * time.Millisecond):
 	}
 	finish <- true
 	if err := <-answered; err != nil {

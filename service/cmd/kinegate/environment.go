@@ -119,7 +119,7 @@ func startOwn(ctx context.Context) (*ownServer, error) {
 			stopping, cancel := context.WithTimeout(context.WithoutCancel(ctx), time.Second)
 			defer cancel()
 			_ = s.Shutdown(stopping)
-			_ = <-served
+			<-served //nolint:errcheck // only its end matters
 		},
 	}, nil
 }

@@ -35,7 +35,7 @@ type served struct {
 func serveAt(t *testing.T, more ...string) *served {
 	t.Helper()
 	// Paths of sockets are short.
-	folder, err := os.MkdirTemp("", "gate")
+	folder, err := os.MkdirTemp("", "gate") //nolint:usetesting // t.TempDir gives longer ones
 	if err != nil {
 		t.Fatal(err)
 	}

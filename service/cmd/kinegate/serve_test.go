@@ -294,7 +294,7 @@ func TestBlockedLogPipe(t *testing.T) {
 		if code != 0 {
 			t.Errorf("code %d", code)
 		}
-	case <-time.After(20 * time.Second): //nolint:forbidigo // a test may leak a timer
+	case <-time.After(20 * time.Second):
 		t.Error("the blocked pipe holds up the end")
 	}
 }

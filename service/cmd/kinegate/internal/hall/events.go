@@ -32,7 +32,7 @@ func Events(ctx context.Context, client kinegatev1.GenerationServiceClient, seed
 			wanted = count - len(events)
 		}
 		// Each channel has streams of its own.
-		own := seed + uint64(c)<<32 //nolint:gosec // the index is small
+		own := seed + uint64(c)<<32
 		if channel.Reaction == "" {
 			events = append(events, noiseEvents(own, c, wanted)...)
 			continue
