@@ -146,6 +146,7 @@ func startHooked(t *testing.T, h *hooked, change ...func(*Options, *Deps)) (*run
 	t.Helper()
 	r := prepare(t, change...)
 	old := r.fronts[General]
+	old.server.Stop() // it would keep its workers
 	f := newFront(old.desk, old.rules, r.serverOptions(r.options.GeneralStreamWindow, r.options.GeneralConnectionWindow))
 	kinegatev1.RegisterInfoServiceServer(f, h)
 	kinegatev1.RegisterSelectionServiceServer(f, h)

@@ -261,6 +261,7 @@ func TestOverload(t *testing.T) {
 	const work, slots, span = 20 * time.Millisecond, 2, 10 * time.Second
 	r := prepare(t, func(o *Options, _ *Deps) { o.WorkSlots, o.CallerCalls = slots, o.ConnectionStreams })
 	old := r.fronts[General]
+	old.server.Stop() // it would keep its workers
 	f := newFront(old.desk, old.rules, r.serverOptions(r.options.GeneralStreamWindow, r.options.GeneralConnectionWindow))
 	kinegatev1.RegisterSelectionServiceServer(f, holding{work: work})
 	healthpb.RegisterHealthServer(f, r.health)
