@@ -30,7 +30,7 @@ func check(t *testing.T, client healthpb.HealthClient, name string) healthpb.Hea
 // TestHealthFollowsLife walks a server through its states on the plain listener, the
 // rpc listener and HTTP.
 func TestHealthFollowsLife(t *testing.T) {
-	r := start(t, func(o *Options, _ *Deps) { o.DrainNotice = 300 * time.Millisecond })
+	r := start(t, func(o *Options, _ *Deps) { o.DrainNotice = 3 * time.Second })
 	plain := healthpb.NewHealthClient(r.dial(t, r.options.HealthAddress))
 	both := []healthpb.HealthClient{plain, healthpb.NewHealthClient(r.general(t))}
 	web := r.http()
