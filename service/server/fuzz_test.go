@@ -93,6 +93,22 @@ func seeds() []proto.Message {
 		&kinegatev1.GetParticleRequest{Key: &kinegatev1.GetParticleRequest_Name{Name: "K+"}},
 		&kinegatev1.ListParticlesRequest{PageSize: 3, PageToken: "AAAA", NameContains: "K"},
 		&kinegatev1.DescribeDecayRequest{Decay: "Lambda -> p pi-", Parent: beam(2), DistancesM: []float64{0, 0.1}},
+		&kinegatev1.TraceDalitzBoundaryRequest{
+			Form:       &kinegatev1.TraceDalitzBoundaryRequest_Process{Process: "omega -> pi+ pi- pi0"},
+			Resolution: 0.1, Bands: []*kinegatev1.DalitzBandRequest{{Products: []string{"pi+", "pi-"}, MassSquaredGev2: 0.3}},
+		},
+		&kinegatev1.SolveTwoBodyRequest{
+			Form: &kinegatev1.SolveTwoBodyRequest_Reaction{Reaction: "gamma p -> K+ Lambda"}, Product: "Lambda",
+			InitialState: &kinegatev1.InitialState{Kind: &kinegatev1.InitialState_SqrtSGev{SqrtSGev: 2}}, LaboratoryAnglesRad: []float64{0.3, 3},
+		},
+		&kinegatev1.ListOpenChannelsRequest{
+			InitialParticles: []string{"gamma", "p"}, MaxBodyCount: 3, PageSize: 4, WithSpinCBose: true,
+			InitialState: &kinegatev1.InitialState{Kind: &kinegatev1.InitialState_SqrtSGev{SqrtSGev: 2}},
+		},
+		&kinegatev1.ConvertMotionRequest{
+			Body:  &kinegatev1.ConvertMotionRequest_Particle{Particle: "pi+"},
+			Value: &kinegatev1.ConvertMotionRequest_RigidityGv{RigidityGv: 1.5}, DistancesM: []float64{3}, RefractiveIndices: []float64{1.33},
+		},
 		&kinegatev1.CheckSelectionRequest{Form: &kinegatev1.CheckSelectionRequest_Yaml{
 			Yaml: "name: pairs\nhypotheses:\n- name: a\n  reaction: -> mu+ mu-\n",
 		}},
