@@ -5,10 +5,10 @@ import "math"
 // The restoration: the number of steps, the violation in standard deviations at which
 // the constraints count as met, the gradient of the violation, in units of the violation,
 // at which it counts as a minimum, and the damping with its limits. It also counts as one
-// where restoreStall steps together lower F by less than a hundredth: an energy that goes to
-// zero leaves no gradient of zero.
+// where no step lowers F, and where restoreStall steps together lower it by less than a
+// hundredth: an energy that goes to zero leaves no gradient of zero.
 const (
-	restoreSteps  = 100
+	restoreSteps  = 200
 	restored      = 1e-6
 	restoredFlat  = 1e-7
 	restoreStall  = 10
@@ -28,8 +28,8 @@ const (
 //	( d W + H  A'       ) ( step       )   (  0 )
 //	( A        -sigma^2 ) ( multiplier ) = ( -f )
 //
-// H being the second derivatives of the constraints times the multipliers. The damping
-// rises until the matrix is that of a minimum and F falls.
+// H being the second derivatives of the constraints times the multipliers; it is left out
+// where the matrix is not that of a minimum. The damping rises until F falls.
 //
 // Source: D. W. Marquardt, "An algorithm for least-squares estimation of nonlinear
 // parameters", Journal of the Society for Industrial and Applied Mathematics 11 (1963)
@@ -62,28 +62,24 @@ func (f *Fitter) restore() Status {
 			earlier = before
 		}
 		copy(f.before, f.x)
-		for {
-			if f.dampedStep(damp) {
-				if after := f.squares(); after < before {
-					before = after
-					damp = math.Max(damp/10, restoreLeast)
-					break
-				}
-			}
+		for !f.dampedStep(1, damp) && !f.dampedStep(0, damp) || !(f.squares() < before) {
 			copy(f.x, f.before)
 			f.evaluate()
 			if damp *= 10; !(damp <= restoreUtmost) {
-				return NotConverged
+				return Infeasible
 			}
 		}
+		before = f.squares()
+		damp = math.Max(damp/10, restoreLeast)
 	}
 	return NotConverged
 }
 
-// dampedStep takes one step and tells whether its matrix was that of a minimum.
-func (f *Fitter) dampedStep(damp float64) bool {
+// dampedStep takes one step with a part of the second derivatives and tells whether its
+// matrix was that of a minimum.
+func (f *Fitter) dampedStep(part, damp float64) bool {
 	p, s := f.problem, &f.system
-	f.assemble(1)
+	f.assemble(part)
 	for v := range p.variables {
 		scale := s.scale[v]
 		s.matrix.entries[v*s.matrix.n+v] += damp/(scale*scale) - p.weight[v]

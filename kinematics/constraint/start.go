@@ -8,7 +8,7 @@ import (
 
 // The search for a start of the unmeasured parameters: the number of steps, the
 // weight that keeps a parameter where it is if no constraint moves it, in units of what
-// the constraints do, and the weight that holds a measured vertex.
+// the constraints do, and the weight that holds the vertex.
 const (
 	startSteps  = 10
 	startWeight = 1e-4
@@ -17,14 +17,15 @@ const (
 
 // begin gives the unmeasured parameters their start: sizes of momenta the mean energy
 // of what is measured, missing momenta an equal share of what is missing, and then
-// all of them what meets the constraints best with the measured ones held.
+// all of them what meets the constraints best with the measured ones held. The vertex
+// starts where it is given.
 func (f *Fitter) begin() {
 	if f.problem.unmeasured == 0 {
 		f.evaluate()
 		return
 	}
 	typical := f.typical()
-	missing, others := 0, f.problem.z != none
+	missing, others := 0, false
 	for i := range f.bodies {
 		b := &f.bodies[i]
 		switch b.form {
@@ -109,8 +110,8 @@ func (f *Fitter) settle() {
 		f.assemble(0)
 		for v := p.measured; v < p.variables; v++ {
 			m.entries[v*m.n+v] = startWeight / (s.scale[v] * s.scale[v])
-			if p.weight[v] > 0 {
-				m.entries[v*m.n+v] = startHold
+			if v == p.z {
+				m.entries[v*m.n+v] = startHold / (s.scale[v] * s.scale[v])
 			}
 			s.right[v] = 0
 		}
