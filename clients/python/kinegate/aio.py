@@ -344,7 +344,7 @@ class _Pump:
         opening = self.protocol.connect(time.monotonic())
         plain: Any = channel
         call: Any = selection_pb2_grpc.SelectionServiceStub(plain).Judge(wait_for_ready=True)
-        helpers = [
+        tasks = [
             asyncio.create_task(self._write(call, opening)),
             asyncio.create_task(self._watch(call)),
         ]
@@ -364,10 +364,10 @@ class _Pump:
                 raise
             return errors.Cancelled("the server was silent", code="CANCELLED")
         finally:
-            for helper in helpers:
-                helper.cancel()
+            for task in tasks:
+                task.cancel()
             call.cancel()
-            await asyncio.gather(*helpers, return_exceptions=True)
+            await asyncio.gather(*tasks, return_exceptions=True)
         return None
 
     async def _write(self, call: Any, opening: Any) -> None:

@@ -26,7 +26,7 @@ DEFAULT_GATE_ADDRESS: Final = "127.0.0.1:8470"
 DEFAULT_TIMEOUT: Final = 10.0
 """Deadline of a call in second."""
 
-# Streams are kept out of the retry policy: the helpers resume them, and a transport that
+# Streams are kept out of the retry policy: this package resumes them, and a transport that
 # replays the frames of a judge stream would judge events twice.
 _UNARY: Final = (
     "ParticleService",

@@ -134,7 +134,7 @@ def test_photon_field_is_most_opaque_in_between(client: kinegate.Client) -> None
         client.photon_field([1.0])
 
 
-def test_bare_stub_beside_the_helper(client: kinegate.Client) -> None:
+def test_bare_stub_beside_the_client(client: kinegate.Client) -> None:
     request = reaction_pb2.DescribeReactionRequest(reaction="gamma p -> p eta")
     reply = client.stubs.reaction.DescribeReaction(request, timeout=10)
     answer = client.reaction("gamma p -> p eta")
