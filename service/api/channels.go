@@ -79,7 +79,7 @@ func (s *reactionService) ListOpenChannels(
 // search converts the request.
 func (s *reactionService) search(request *kinegatev1.ListOpenChannelsRequest) (reaction.Search, stateForm, error) {
 	f := &former{}
-	form := f.initialStateOf("initial_state", request.GetInitialState())
+	form := f.stateOf(request.GetInitialState())
 	if request.GetInitialState() == nil {
 		f.need("initial_state", "", "beam_on_target, two_beams, two_four_momenta or sqrt_s_gev")
 	}

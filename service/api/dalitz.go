@@ -115,7 +115,7 @@ func (s *decayService) dalitzForm(
 func dalitzChannels(r *reaction.Reaction, request *kinegatev1.TraceDalitzBoundaryRequest) ([]reaction.Channel, error) {
 	energies := request.GetSqrtSGev()
 	f := &former{}
-	form := f.initialStateOf("initial_state", request.GetInitialState())
+	form := f.stateOf(request.GetInitialState())
 	switch n := len(energies); {
 	case r.IsDecay() && (n > 0 || request.GetInitialState() != nil):
 		f.need("sqrt_s_gev", "given", "none for a decay, whose energy is the parent's mass")

@@ -14,8 +14,9 @@ type stateForm struct {
 	path  string
 }
 
-// initialStateOf converts an initial state; nil is unstated.
-func (f *former) initialStateOf(at string, m *kinegatev1.InitialState) stateForm {
+// stateOf converts the initial state of a request; nil is unstated.
+func (f *former) stateOf(m *kinegatev1.InitialState) stateForm {
+	const at = "initial_state"
 	if m == nil {
 		return stateForm{path: at}
 	}

@@ -29,7 +29,7 @@ func (s *reactionService) DescribeReaction(
 	}
 	r := parsed.Reaction
 	f := &former{}
-	form := f.initialStateOf("initial_state", request.GetInitialState())
+	form := f.stateOf(request.GetInitialState())
 	if err := f.faults.Err(); err != nil {
 		return nil, err
 	}

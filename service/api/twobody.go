@@ -60,7 +60,7 @@ func (s *reactionService) SolveTwoBody(
 // channel holds a reaction against an initial state, which must be given.
 func (s *reactionService) channel(r *reaction.Reaction, in *kinegatev1.InitialState) (reaction.Channel, error) {
 	f := &former{}
-	form := f.initialStateOf("initial_state", in)
+	form := f.stateOf(in)
 	if in == nil {
 		f.need("initial_state", "", "beam_on_target, two_beams, two_four_momenta or sqrt_s_gev")
 	}
