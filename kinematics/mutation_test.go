@@ -131,7 +131,6 @@ func runMutated(t *testing.T, m mutation) (string, error) {
 
 func write(t *testing.T, path string, data []byte) {
 	t.Helper()
-	//nolint:gosec // below the test's own temporary folder
 	if err := os.WriteFile(path, data, 0o600); err != nil {
 		t.Fatal(err)
 	}
