@@ -189,6 +189,9 @@ func resident(t *testing.T, pid int, key string) int64 {
 // the open streams and 16 MiB; the stalled connections are gone within 6 s; and a
 // server told to leave meanwhile leaves in time.
 func TestMemoryWithEveryStreamStalled(t *testing.T) {
+	if raceDetector {
+		t.Skip("the race detector's own memory passes the bound; make test measures without it")
+	}
 	const (
 		pool   = 64 << 20
 		window = 512 << 10
