@@ -27,11 +27,11 @@ type body struct {
 	distance float64
 
 	theta [maxParameters]float64
-	// q is the momentum along the object's own direction, size its length; slope and
-	// sizes are their derivatives in the parameters.
+	// q is the momentum along the object's own direction, size its length; slope[a] is
+	// the derivative of q and of the energy in parameter a, sizes[a] that of the size.
 	q     [3]float64
 	size  float64
-	slope [3][3]float64 // slope[a] is dq/dtheta_a
+	slope [3]vector
 	sizes [3]float64
 	trig  [4]float64 // sin theta, cos theta, sin phi, cos phi; sinh, cosh eta; or 1/N, n_x, n_y
 	point pointing
@@ -194,29 +194,27 @@ func (b *body) evaluate(v *[3]float64, columns []vector) {
 		energy = math.Sqrt(float64(b.size*b.size) + float64(b.mass*b.mass))
 		speed = b.size / energy
 	}
-	var raw [3]vector
+	for a := range b.slope {
+		b.slope[a][3] = speed * b.sizes[a]
+	}
+	slope := &b.slope
 	if b.repointed {
 		b.point.aim(b, v)
 		b.momentum = b.point.momentum(b.size, energy)
 		b.alongZ = b.point.alongZ(b.size)
-		for a := range raw {
-			raw[a] = b.point.turned(&b.slope[a], speed*b.sizes[a])
-		}
+		slope = b.point.turn(&b.slope)
 	} else {
 		b.momentum = vector{b.q[0], b.q[1], b.q[2], energy}
-		for a := range raw {
-			raw[a] = vector{b.slope[a][0], b.slope[a][1], b.slope[a][2], speed * b.sizes[a]}
-		}
 	}
-	for a := range raw {
-		column := &columns[b.vars[a]]
-		s := b.spread[a][a]
-		*column = vector{s * raw[a][0], s * raw[a][1], s * raw[a][2], s * raw[a][3]}
-		if !b.diagonal {
-			for c := a + 1; c < 3; c++ {
-				column.add(b.spread[c][a], &raw[c])
-			}
-		}
+	first, second, third := &columns[b.vars[0]], &columns[b.vars[1]], &columns[b.vars[2]]
+	l := &b.spread
+	first.set(l[0][0], &slope[0])
+	second.set(l[1][1], &slope[1])
+	third.set(l[2][2], &slope[2])
+	if !b.diagonal {
+		first.add(l[1][0], &slope[1])
+		first.add(l[2][0], &slope[2])
+		second.add(l[2][1], &slope[2])
 	}
 }
 
@@ -237,7 +235,7 @@ func (b *body) lengthwise(columns []vector) {
 func (b *body) cartesian() {
 	b.q = [3]float64{b.theta[0], b.theta[1], b.theta[2]}
 	b.size = math.Sqrt(dot3(&b.q, &b.q))
-	b.slope = [3][3]float64{{1, 0, 0}, {0, 1, 0}, {0, 0, 1}}
+	b.slope = [3]vector{{1, 0, 0}, {0, 1, 0}, {0, 0, 1}}
 	b.sizes = [3]float64{}
 	if b.size > 0 {
 		b.sizes = [3]float64{b.q[0] / b.size, b.q[1] / b.size, b.q[2] / b.size}
@@ -253,7 +251,7 @@ func (b *body) angles() {
 	b.size, b.sizes = p, [3]float64{1, 0, 0}
 	b.q = [3]float64{p * n[0], p * n[1], p * n[2]}
 	pc, ps := p*ct, p*st
-	b.slope = [3][3]float64{n, {pc * cp, pc * sp, -ps}, {-ps * sp, ps * cp, 0}}
+	b.slope = [3]vector{{n[0], n[1], n[2]}, {pc * cp, pc * sp, -ps}, {-ps * sp, ps * cp, 0}}
 }
 
 func (b *body) transverse() {
@@ -263,7 +261,7 @@ func (b *body) transverse() {
 	b.trig = [4]float64{sh, ch, sp, cp}
 	b.q = [3]float64{pt * cp, pt * sp, pt * sh}
 	b.size, b.sizes = pt*ch, [3]float64{ch, pt * sh, 0}
-	b.slope = [3][3]float64{{cp, sp, sh}, {0, 0, pt * ch}, {-pt * sp, pt * cp, 0}}
+	b.slope = [3]vector{{cp, sp, sh}, {0, 0, pt * ch}, {-pt * sp, pt * cp, 0}}
 }
 
 func (b *body) slopes() {
@@ -273,10 +271,10 @@ func (b *body) slopes() {
 	b.trig = [4]float64{k, n[0], n[1], 0}
 	b.size, b.sizes = p, [3]float64{1, 0, 0}
 	b.q = [3]float64{p * n[0], p * n[1], p * n[2]}
-	b.slope[0] = n
+	b.slope[0] = vector{n[0], n[1], n[2]}
 	for a, e := range [2]float64{n[0], n[1]} {
 		w := float64(p * k)
-		b.slope[1+a] = [3]float64{-w * e * n[0], -w * e * n[1], -w * e * n[2]}
+		b.slope[1+a] = vector{-w * e * n[0], -w * e * n[1], -w * e * n[2]}
 		b.slope[1+a][a] += w
 	}
 }

@@ -1,6 +1,7 @@
 package constraint
 
 import (
+	"slices"
 	"strconv"
 
 	"example.org/kinegate/kinematics/fault"
@@ -78,7 +79,7 @@ type massRow struct {
 // side is one sum of four-momenta.
 type side struct {
 	objects []int
-	vars    []int // the variables of its objects but the vertex
+	vars    []int // the variables of its objects but the vertex, rising
 	z       bool  // whether it depends on the vertex
 }
 
@@ -229,6 +230,7 @@ func (p *Problem) side(objects []int) side {
 		s.vars = append(s.vars, p.parts[i].vars[:p.parts[i].count]...)
 		s.z = s.z || p.parts[i].repointed && p.z != none
 	}
+	slices.Sort(s.vars)
 	return s
 }
 

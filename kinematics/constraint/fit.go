@@ -66,16 +66,8 @@ func (f *Fitter) descend() Status {
 		if f.measure() {
 			return Converged
 		}
-		if f.near() {
-			f.solveStep()
-			for v, d := range f.step {
-				f.x[v] += d
-			}
-			f.evaluate()
-			copy(f.multiplier, f.next)
-			if f.measure() {
-				return Converged
-			}
+		if f.repeat() {
+			return Converged
 		}
 	}
 	return NotConverged
@@ -86,18 +78,35 @@ func (f *Fitter) measure() bool {
 	f.result.Iterations++
 	f.pull(f.multiplier)
 	f.result.Stationarity, f.result.Violation = f.stationarity(), f.violation()
-	return f.result.Stationarity <= Bound && f.result.Violation <= Bound
+	return f.left() <= Bound
 }
 
-// near tells whether one more step with the same matrix will do. Newton's step of size
-// h leaves a residual r = C h^2, where 2 C h is how much the matrix changed; the same
-// matrix again leaves about 2 C h r = 2 r^2/h. A factor of four is to spare.
-func (f *Fitter) near() bool {
-	left, size := math.Max(f.result.Stationarity, f.result.Violation), 0.0
+// left is what is left of the conditions of the minimum.
+func (f *Fitter) left() float64 { return worse(f.result.Stationarity, f.result.Violation) }
+
+// repeat takes more steps with the same matrix where at most two will do, which cost less
+// than one with a new one, and tells whether the fit has converged. A step of Newton's of
+// size h leaves a residual r = C h^2, where 2 C h is how much the matrix changed; so a step
+// with the old matrix leaves the part 2 C h = 2 r/h of the residual. The estimate is
+// doubled, and then taken from what such a step left.
+func (f *Fitter) repeat() bool {
+	left, size := f.left(), 0.0
 	for v, d := range f.step {
 		size = worse(size, d/f.system.scale[v])
 	}
-	return 8*left*left <= Bound*size
+	part := 4 * left / size
+	for allowed := 2; allowed > 0 && left*part*part <= Bound; allowed-- {
+		f.solveStep()
+		subtract(f.x, -1, f.step)
+		f.evaluate()
+		copy(f.multiplier, f.next)
+		if f.measure() {
+			return true
+		}
+		part = f.left() / left
+		left = f.left()
+	}
+	return false
 }
 
 // direction finds the step and the next multipliers. A matrix that is not that of a
@@ -145,11 +154,13 @@ func (f *Fitter) solveStep() {
 	}
 }
 
-// The line search: the part of the expected gain that a step must bring, and the
-// shortest one.
+// The line search: the part of the expected gain that a step must bring, the shortest
+// step, and the expected gain below which the step is near enough to the minimum, and its
+// gain near enough to the rounding of the merit, to be taken without a test.
 const (
 	sufficient = 1e-4
 	shortest   = 1e-8
+	certain    = 1e-9
 )
 
 // search goes along the step as far as it lowers the merit
@@ -175,7 +186,7 @@ func (f *Fitter) search() bool {
 		copy(f.x, f.before)
 		subtract(f.x, -length, f.step)
 		f.evaluate()
-		if got := f.merit(); got <= start+float64(sufficient*length*slope) || -slope < 1e-10 {
+		if -slope < certain || f.merit() <= start+float64(sufficient*length*slope) {
 			copy(f.multiplier, f.next)
 			return true
 		}

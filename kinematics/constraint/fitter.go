@@ -237,10 +237,10 @@ func (f *Fitter) stationarity() float64 {
 
 // worse returns the larger magnitude, and NaN if there is one.
 func worse(largest, v float64) float64 {
-	if v = math.Abs(v); v <= largest {
-		return largest
+	if v = math.Abs(v); v > largest || v != v {
+		return v
 	}
-	return v
+	return largest
 }
 
 // violation returns the largest constraint in units of standard deviations, after

@@ -26,6 +26,7 @@ type pointing struct {
 	gradient    [3]float64
 	curved      [3][3]float64 // G
 	onDirection float64       // eta.u
+	turned      [3]vector     // the derivatives of the turned momentum
 }
 
 // aim computes the direction from the vertex.
@@ -49,21 +50,25 @@ func (p *pointing) momentum(size, energy float64) vector {
 	return vector{size * p.u[0], size * p.u[1], size * p.u[2], energy}
 }
 
-// turned returns the derivative of the four-momentum for a derivative of q and of
-// the energy: (n.dq) u + (R/|d|) of the part of dq across both n and u.
-func (p *pointing) turned(dq *[3]float64, dE float64) vector {
-	along := dot3(dq, &p.n)
-	across := [3]float64{
-		dq[0] - float64(along*p.n[0]), dq[1] - float64(along*p.n[1]), dq[2] - float64(along*p.n[2]),
-	}
+// turn returns the derivatives of the four-momentum for those of q and of the energy:
+// (n.dq) u + (R/|d|) of the part of dq across both n and u.
+func (p *pointing) turn(slope *[3]vector) *[3]vector {
 	k := p.reach / p.far
-	rest := along - float64(k*dot3(&across, &p.u))
-	return vector{
-		float64(k*across[0]) + float64(rest*p.u[0]),
-		float64(k*across[1]) + float64(rest*p.u[1]),
-		float64(k*across[2]) + float64(rest*p.u[2]),
-		dE,
+	for a := range slope {
+		dq := &slope[a]
+		along := dq.on3(&p.n)
+		across := [3]float64{
+			dq[0] - float64(along*p.n[0]), dq[1] - float64(along*p.n[1]), dq[2] - float64(along*p.n[2]),
+		}
+		rest := along - float64(k*dot3(&across, &p.u))
+		p.turned[a] = vector{
+			float64(k*across[0]) + float64(rest*p.u[0]),
+			float64(k*across[1]) + float64(rest*p.u[1]),
+			float64(k*across[2]) + float64(rest*p.u[2]),
+			dq[3],
+		}
 	}
+	return &p.turned
 }
 
 // alongZ returns the derivative of the four-momentum in the vertex z.
@@ -133,12 +138,12 @@ func (p *pointing) curvature(b *body, out *triangle) {
 	for a := range 3 {
 		var fq [3]float64
 		for i := range fq {
-			fq[i] = dot3(&f[i], &b.slope[a])
+			fq[i] = b.slope[a].on3(&f[i])
 		}
 		for c := range a + 1 {
-			out[a][c] += dot3(&fq, &b.slope[c])
+			out[a][c] += b.slope[c].on3(&fq)
 		}
-		onZ := float64(p.gradient[2]*dot3(&p.n, &b.slope[a])) + float64(r*dot3(&gzw, &b.slope[a]))
+		onZ := float64(p.gradient[2]*b.slope[a].on3(&p.n)) + float64(r*b.slope[a].on3(&gzw))
 		out[3][a] = -onZ
 	}
 	out[3][3] = s * p.curved[2][2]

@@ -100,8 +100,9 @@ func (f *Fitter) addMixing(s *side, twice float64) {
 	m := &f.system.matrix
 	for i, v := range s.vars {
 		low := f.columns[v].lowered(twice)
+		row := m.row(v)
 		for _, w := range s.vars[:i+1] {
-			m.add(v, w, low.on(&f.columns[w]))
+			row[w] += float64(low.on(&f.columns[w]))
 		}
 	}
 	if s.z {
