@@ -57,7 +57,9 @@ func TestGenerateEventsToSlowReader(t *testing.T) {
 	began := time.Now()
 	cancel()
 	eventually(t, "the end of the call", func() bool { return r.metric(t, "rpc_server_calls_in_flight") == 0 })
-	if took := time.Since(began); took > 50*time.Millisecond {
+	took := time.Since(began)
+	t.Logf("FIGURE T1 the call ended %v after its caller", took)
+	if took > 50*time.Millisecond*slowdown {
 		t.Errorf("the call ended %v after its caller", took)
 	}
 }
