@@ -34,6 +34,10 @@ func rows() []row {
 		{name: "  the same over numpy in place", measure: pairMasses("in-place")},
 		{name: "  the same over a plain C++ loop (-O2)", measure: pairMasses("loop")},
 		{
+			name: "simulated events to a client, rate over in process", limit: 0.6, aim: 0.8, atLeast: true,
+			measure: benchmarkMetric("./service/cmd/kinegate", "BenchmarkGenerateEvents", "of-in-process-rate"),
+		},
+		{
 			name: "four-body phase space, events a second over numpy", limit: 3, aim: 5, atLeast: true,
 			measure: timesFaster(
 				processorTime("./kinematics/generation", "BenchmarkPhaseSpace/n=04", 500_000),
