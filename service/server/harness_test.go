@@ -114,6 +114,12 @@ func prepare(t testing.TB, change ...func(*Options, *Deps)) *running {
 		t.Fatal(err)
 	}
 	r.Server = s
+	t.Cleanup(func() {
+		// A server that never served has goroutines that wait for calls.
+		for _, f := range s.fronts {
+			f.server.Stop()
+		}
+	})
 	return r
 }
 
