@@ -33,7 +33,8 @@ func channelsCommand(p program) *cobra.Command {
 		Long: "channels lists the final states of up to five bodies that the conservation laws allow and\n" +
 			"the energy opens, by the sum of their masses, and the one that opens next. Channels are\n" +
 			"made of what is stable against the strong decay, with eta, omega, eta' and phi, unless\n" +
-			"--products names others. It exits with 3 if no channel is open.",
+			"--products names others. Spin, C and Bose symmetry forbid more; --spin-rules applies them.\n" +
+			"It exits with 3 if no channel is open.",
 		Example: `  kinegate channels gamma p --beam "1.2 GeV"
   kinegate channels gamma p --beam "1.2 GeV" --bodies 3 --products "p n pi+ pi- pi0"
   kinegate channels gamma gamma --sqrt-s "1 GeV" --spin-rules`,
@@ -178,6 +179,9 @@ func (e *environment) printChannels(
 	e.print("\n  %s of up to %d bodies, made of %d particles", counted, reply.GetCompleteBodyCount(), len(reply.GetProducts()))
 	if !reply.GetComplete() {
 		e.print("  complete to %d bodies only: more are too much work; name fewer --products", reply.GetCompleteBodyCount())
+	}
+	if names := request.GetInitialParticles(); !request.GetWithSpinCBose() && len(names) == 2 && names[0] == "gamma" && names[1] == "gamma" {
+		e.print("  spin, C and Bose symmetry are not applied and forbid some of these: --spin-rules")
 	}
 	e.print("  %s; particle table %s", reply.GetFrame(), reply.GetTableVersion())
 	return nil

@@ -158,8 +158,12 @@ func (e *environment) describeField(r *kinegatev1.DescribePhotonFieldResponse, q
 			if x.MeanFreePathKpc != nil {
 				path, metres = kiloparsec(x.GetMeanFreePathKpc(), digits), fmt.Sprintf("%.6e m", x.GetMeanFreePathM())
 			}
-			t.Row(gev(x.GetPhotonEnergyGev()), path, metres, fmt.Sprintf("%.6e", x.GetAbsorptionPerM()),
-				fmt.Sprintf("%.6g", x.GetOpticalDepth()), fmt.Sprintf("%.6g", math.Exp(-x.GetOpticalDepth())))
+			// Without a way there is no depth: a 0 would read as a transparent field.
+			depth, passes := "-", "-"
+			if q.GetDistanceM() > 0 {
+				depth, passes = fmt.Sprintf("%.6g", x.GetOpticalDepth()), fmt.Sprintf("%.6g", math.Exp(-x.GetOpticalDepth()))
+			}
+			t.Row(gev(x.GetPhotonEnergyGev()), path, metres, fmt.Sprintf("%.6e", x.GetAbsorptionPerM()), depth, passes)
 		}
 		if err := t.Write(e.out); err != nil {
 			return err

@@ -99,6 +99,7 @@ func (s *shift) write(e *environment) error {
 		return err
 	}
 	e.print("  kept: accepted share of the true events after the pre-trigger; pure: true share of the accepted")
+	e.print("  eta-prime is a shadow: it is reported and never opens the gate")
 	e.print("")
 	t = text.NewTable("true channel", ">events", ">Hz", ">through the gate")
 	for c, channel := range s.mix {
