@@ -5,9 +5,6 @@ import (
 	"math"
 	"slices"
 	"testing"
-
-	"example.org/kinegate/kinematics/constraint"
-	"example.org/kinegate/kinematics/num/random"
 )
 
 // The true assignment of toy events, resolutions evaluated at the true values and a tenth
@@ -110,31 +107,6 @@ func TestNonLinearity(t *testing.T) {
 					t.Errorf("resolutions x %g: beyond a tenth", spread)
 				}
 			}
-		})
-	}
-}
-
-func BenchmarkFit(b *testing.B) {
-	for _, y := range toys() {
-		b.Run(y.name, func(b *testing.B) {
-			y.spread = 1
-			f := fitter(b, &y.spec)
-			const events = 256
-			var all [events][]constraint.Measurement
-			for i := range all {
-				s := random.New(9, random.Generation, int64(i))
-				y.event(f, &s)
-				all[i] = slices.Clone(f.Measurements)
-			}
-			steps, i := 0, 0
-			b.ReportAllocs()
-			for b.Loop() {
-				copy(f.Measurements, all[i%events])
-				r := f.Fit()
-				steps += r.Iterations
-				i++
-			}
-			b.ReportMetric(float64(steps)/float64(i), "steps/op")
 		})
 	}
 }
