@@ -11,9 +11,18 @@ package constraint
 // along them. A factor then exists without pivoting: L L' = S, M M' = U + Y' Y with
 // Y = L^-1 B'.
 type border struct {
-	matrix matrix // S, then below it the rows of Y' and the factor M
-	// constraints is the size of S.
-	constraints int
+	// covariance is S, variables U, and below the rows of B; in the end L, M and Y'.
+	covariance, variables lower
+	below                 [][]float64
+}
+
+func newBorder(constraints, variables int) border {
+	m := newMatrix(constraints + variables)
+	b := border{covariance: m.triangleOf(0, constraints), variables: m.triangleOf(constraints, variables)}
+	for u := range variables {
+		b.below = append(b.below, m.row(constraints + u)[:constraints:constraints])
+	}
+	return b
 }
 
 // independent is the least pivot, of a matrix with entries of about one, with which the
@@ -24,61 +33,54 @@ const independent = 0x1p-40
 // constraints, applies the scales and factors it. It returns false if a block is not
 // positive definite.
 func (b *border) factor(s *system, first int) bool {
-	m, from := &b.matrix, &s.matrix
-	n, k := m.n, b.constraints
-	variables := n - k
+	from := &s.matrix
 	scale := s.scale[first:]
-	inner, outer := scale[:variables], scale[variables:]
+	inner, outer := scale[:len(b.variables)], scale[len(b.variables):]
 	for i, di := range outer {
-		row := from.entries[(first+variables+i)*from.n+first:][:variables+i+1]
-		at := k*n + i
+		row := from.entries[(first+len(inner)+i)*from.n+first:][:len(inner)+i+1]
 		for u, v := range row[:len(inner)] {
-			m.entries[at] = v * di * inner[u]
-			at += n
+			b.below[u][i] = v * di * inner[u]
 		}
 		row = row[len(inner):]
-		to := m.entries[i*n:][:len(row)]
+		to := b.covariance[i][:len(row)]
 		for j, v := range row {
 			to[j] = -v * di * outer[j]
 		}
 	}
 	for u, du := range inner {
 		row := from.entries[(first+u)*from.n+first:][:u+1]
-		to := m.entries[(k+u)*n+k:][:len(row)]
+		to := b.variables[u][:len(row)]
 		for w, v := range row {
 			to[w] = v * du * inner[w]
 		}
 	}
-	if !m.cholesky(0, k, independent) {
+	if !b.covariance.factor(independent) {
 		return false
 	}
-	for u := range variables {
-		left := m.entries[(k+u)*n:][:k+u+1]
-		m.forward(0, left[:k])
-		for w := range u + 1 {
-			left[k+w] += dot(left[:k], m.entries[(k+w)*n:])
+	b.covariance.forwardAll(b.below)
+	for u, row := range b.variables {
+		for w := range row {
+			row[w] += dot(b.below[u], b.below[w])
 		}
 	}
-	return m.cholesky(k, variables, independent)
+	return b.variables.factor(independent)
 }
 
 // solve overwrites b, the right sides of the variables and then of the constraints.
 func (b *border) solve(right []float64) {
-	m := &b.matrix
-	n, k := m.n, b.constraints
-	x, y := right[:n-k], right[n-k:]
-	m.forward(0, y)
+	x, y := right[:len(b.variables)], right[len(b.variables):]
+	one := [1][]float64{y}
+	b.covariance.forwardAll(one[:])
 	for u := range x {
-		x[u] += dot(y, m.entries[(k+u)*n:])
+		x[u] += dot(y, b.below[u])
 	}
-	at := k * (n + 1)
-	m.forward(at, x)
-	m.backward(at, x)
+	b.variables.forward(x)
+	b.variables.backward(x)
 	for i := range y {
 		y[i] = -y[i]
 	}
 	for u, v := range x {
-		subtract(y, -v, m.entries[(k+u)*n:])
+		subtract(y, -v, b.below[u])
 	}
-	m.backward(0, y)
+	b.covariance.backward(y)
 }

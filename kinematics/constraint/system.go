@@ -13,6 +13,7 @@ import "math"
 // definite the whole is solved with pivoting.
 type system struct {
 	matrix matrix
+	blocks []block
 	border border
 	pivots indefinite
 	right  []float64
@@ -31,13 +32,16 @@ func newSystem(p *Problem) system {
 	n := p.variables + p.constraints()
 	s := system{
 		matrix: newMatrix(n),
-		border: border{matrix: newMatrix(n - p.measured), constraints: p.constraints()},
+		border: newBorder(p.constraints(), p.variables-p.measured),
 		pivots: newIndefinite(n),
 		right:  make([]float64, n),
 		scale:  make([]float64, n),
 	}
 	for i := range s.scale {
 		s.scale[i] = 1
+	}
+	for i := range p.clusters {
+		s.blocks = append(s.blocks, newBlock(&s.matrix, &p.clusters[i]))
 	}
 	return s
 }
@@ -277,8 +281,8 @@ const definite = 0x1p-10
 func (f *Fitter) factor(plain bool) bool {
 	p, s := f.problem, &f.system
 	s.whole, s.plain = false, plain
-	for i := range p.clusters {
-		if !s.eliminate(&p.clusters[i]) {
+	for i := range s.blocks {
+		if !s.blocks[i].eliminate(plain) {
 			return false
 		}
 	}
@@ -299,49 +303,24 @@ func (f *Fitter) factorWhole() bool {
 	return s.pivots.factor(&s.matrix) && s.pivots.positive == f.problem.variables
 }
 
-// eliminate takes a cluster out of the rows that it mixes with.
-func (s *system) eliminate(c *cluster) bool {
-	m := &s.matrix
-	if !s.plain {
-		if !m.cholesky(c.first, c.size, definite) {
-			return false
-		}
-		for _, r := range c.rows {
-			m.forward(c.first*(m.n+1), m.entries[r*m.n+c.first:][:c.size])
-		}
-	}
-	m.gram(c)
-	return true
-}
-
 // solve overwrites right with the solution.
 func (f *Fitter) solve() {
 	p, s := f.problem, &f.system
-	m, b := &s.matrix, s.right
+	b := s.right
 	if s.whole {
 		s.scaleRight(0)
 		s.pivots.solve(b)
 		s.scaleRight(0)
 		return
 	}
-	for i := range p.clusters {
-		c := &p.clusters[i]
-		part := b[c.first:][:c.size]
-		if !s.plain {
-			m.forward(c.first*(m.n+1), part)
-		}
-		m.collect(c, part, b)
+	for i := range s.blocks {
+		s.blocks[i].collect(s.plain, b)
 	}
 	s.scaleRight(p.measured)
 	s.border.solve(b[p.measured:])
 	s.scaleRight(p.measured)
-	for i := range p.clusters {
-		c := &p.clusters[i]
-		part := b[c.first:][:c.size]
-		m.distribute(c, part, b)
-		if !s.plain {
-			m.backward(c.first*(m.n+1), part)
-		}
+	for i := range s.blocks {
+		s.blocks[i].distribute(s.plain, b)
 	}
 }
 
