@@ -151,7 +151,13 @@ func (b *body) place(x []float64) {
 		}
 	default:
 		l := &b.spread
-		x0, x1, x2 := x[b.vars[0]], x[b.vars[1]], x[b.vars[2]]
+		var x0, x1, x2 float64
+		if b.whole {
+			y := (*[3]float64)(x[b.vars[0]:])
+			x0, x1, x2 = y[0], y[1], y[2]
+		} else {
+			x0, x1, x2 = x[b.vars[0]], x[b.vars[1]], x[b.vars[2]]
+		}
 		b.theta[0] = b.start[0] + float64(l[0][0]*x0)
 		b.theta[1] = b.start[1] + float64(l[1][0]*x0) + float64(l[1][1]*x1)
 		b.theta[2] = b.start[2] + float64(l[2][0]*x0) + float64(l[2][1]*x1) + float64(l[2][2]*x2)

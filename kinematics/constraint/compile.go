@@ -4,6 +4,7 @@ import (
 	"slices"
 	"strconv"
 
+	"example.org/kinegate/kinematics/event"
 	"example.org/kinegate/kinematics/fault"
 )
 
@@ -31,9 +32,8 @@ type Problem struct {
 	// z is the variable of the vertex, or none.
 	z      int
 	vertex VertexZ
-	// owner is the object of each variable but the vertex, sign that object's sign.
-	owner []int
-	sign  []float64
+	// sign is that of the object of each variable but the vertex.
+	sign []float64
 	// weight is 1 for a measured variable and 0 for an unmeasured one.
 	weight []float64
 	// unmeasured is the number of variables of weight 0.
@@ -53,6 +53,8 @@ type part struct {
 	count     int // parameters
 	mask      uint8
 	vars      [maxParameters]int
+	// whole says that its parameters are three neighbours, all measured or none.
+	whole bool
 }
 
 // component is a combination of the components of the four-momentum.
@@ -194,12 +196,13 @@ func (p *Problem) number(owners union, vertex VertexZ) {
 		p.parts[i].number(false, &p.weight)
 	}
 	p.unmeasured = len(p.weight) - p.measured
-	p.sign, p.owner = make([]float64, len(p.weight)), make([]int, len(p.weight))
+	p.sign = make([]float64, len(p.weight))
 	for i := range p.parts {
 		r := &p.parts[i]
 		for _, v := range r.vars[:r.count] {
-			p.sign[v], p.owner[v] = r.sign, i
+			p.sign[v] = r.sign
 		}
+		r.whole = r.count == 3 && (r.mask == 0 || r.mask == event.AllMeasured)
 	}
 	if repointed && vertex != VertexKnown {
 		p.z = len(p.weight)

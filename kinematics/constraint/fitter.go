@@ -216,8 +216,20 @@ func (f *Fitter) pull(multiplier []float64) {
 // that moves the constraints by one standard deviation. The pulls are set.
 func (f *Fitter) stationarity() float64 {
 	p := f.problem
-	for v, i := range p.owner {
-		f.gradient[v] = float64(p.weight[v]*f.x[v]) + f.pulls[i].on(&f.columns[v])
+	for i := range f.bodies {
+		b, eta := &f.bodies[i], &f.pulls[i]
+		if b.whole {
+			v := b.vars[0]
+			g, x, c := (*[3]float64)(f.gradient[v:]), (*[3]float64)(f.x[v:]), (*[3]vector)(f.columns[v:])
+			w := p.weight[v]
+			g[0] = float64(w*x[0]) + eta.on(&c[0])
+			g[1] = float64(w*x[1]) + eta.on(&c[1])
+			g[2] = float64(w*x[2]) + eta.on(&c[2])
+			continue
+		}
+		for _, v := range b.vars[:b.count] {
+			f.gradient[v] = float64(p.weight[v]*f.x[v]) + eta.on(&f.columns[v])
+		}
 	}
 	if p.z != none {
 		g := float64(p.weight[p.z] * f.x[p.z])
@@ -229,8 +241,11 @@ func (f *Fitter) stationarity() float64 {
 		f.gradient[p.z] = g
 	}
 	largest := 0.0
-	for v, g := range f.gradient {
-		largest = worse(largest, g*f.system.scale[v])
+	for _, g := range f.gradient[:p.measured] {
+		largest = worse(largest, g)
+	}
+	for v := p.measured; v < p.variables; v++ {
+		largest = worse(largest, f.gradient[v]*f.system.scale[v])
 	}
 	return largest
 }

@@ -81,9 +81,20 @@ func (f *Fitter) addCurvature(part float64) {
 		if !b.curvature(&eta, t) {
 			continue
 		}
-		for a := range b.count {
-			for c := range a + 1 {
-				m.add(b.vars[a], b.vars[c], t[a][c])
+		if b.whole {
+			v := b.vars[0]
+			first, second, third := m.row(v), m.row(v+1), m.row(v+2)
+			first[v] += float64(t[0][0])
+			second[v] += float64(t[1][0])
+			second[v+1] += float64(t[1][1])
+			third[v] += float64(t[2][0])
+			third[v+1] += float64(t[2][1])
+			third[v+2] += float64(t[2][2])
+		} else {
+			for a := range b.count {
+				for c := range a + 1 {
+					m.add(b.vars[a], b.vars[c], t[a][c])
+				}
 			}
 		}
 		if b.repointed && p.z != none {
@@ -131,30 +142,57 @@ func (f *Fitter) alongZ(s *side) vector {
 	return sum
 }
 
-// writeConstraints writes the derivatives of the constraints and sums their squares over
-// the measured variables into squares.
+// writeConstraints writes the derivatives of the constraints and their variances into
+// squared.
 func (f *Fitter) writeConstraints() {
 	p, m := f.problem, &f.system.matrix
-	for k, c := range p.balance {
-		row := m.row(p.variables + k)
-		f.writeBalance(row, c)
-		if p.z != none {
-			a := 0.0
+	if len(p.balance) == maxParameters {
+		f.writeWholeBalance()
+	} else {
+		for k, c := range p.balance {
+			f.writeBalance(m.row(p.variables+k), c)
+		}
+	}
+	if p.z != none {
+		for k, c := range p.balance {
+			row := m.row(p.variables + k)
 			for i := range f.bodies {
 				if b := &f.bodies[i]; b.repointed {
-					a += float64(b.sign * f.spreadZ * c.of(&b.alongZ))
+					row[p.z] += float64(b.sign * f.spreadZ * c.of(&b.alongZ))
 				}
 			}
-			row[p.z] = a
 		}
-		f.squared[k] = f.variance(row)
 	}
 	for k := range p.masses {
 		row := m.row(p.variables + len(p.balance) + k)
 		left, right := &p.masses[k].left, &p.masses[k].right
 		f.writeSide(row, left, &f.sums[k][0], 2)
 		f.writeSide(row, right, &f.sums[k][1], -2)
-		f.squared[len(p.balance)+k] = f.variance(row)
+	}
+	for k := range f.squared {
+		row := m.row(p.variables + k)
+		sum := dot(row[:p.measured], row)
+		if p.z != none {
+			sum += float64(p.weight[p.z] * row[p.z] * row[p.z])
+		}
+		f.squared[k] = sum
+	}
+}
+
+// writeWholeBalance writes the derivatives of all four components.
+func (f *Fitter) writeWholeBalance() {
+	p, m := f.problem, &f.system.matrix
+	sign := p.sign
+	columns := f.columns[:len(sign)]
+	x, y := m.row(p.variables)[:len(sign)], m.row(p.variables + 1)[:len(sign)]
+	minus, plus := m.row(p.variables + 2)[:len(sign)], m.row(p.variables + 3)[:len(sign)]
+	for v, s := range sign {
+		c := &columns[v]
+		z, energy := c[2], c[3]
+		x[v] = s * c[0]
+		y[v] = s * c[1]
+		minus[v] = s * (energy - z)
+		plus[v] = s * (energy + z)
 	}
 }
 
@@ -174,16 +212,6 @@ func (f *Fitter) writeBalance(row []float64, c component) {
 		column := &columns[v]
 		row[v] = s * (column[one&3] + float64(factor*column[other&3]))
 	}
-}
-
-// variance is that of a constraint with the given derivatives.
-func (f *Fitter) variance(row []float64) float64 {
-	p := f.problem
-	sum := dot(row[:p.measured], row)
-	if p.z != none {
-		sum += float64(p.weight[p.z] * row[p.z] * row[p.z])
-	}
-	return sum
 }
 
 func (f *Fitter) writeSide(row []float64, s *side, sum *vector, twice float64) {
