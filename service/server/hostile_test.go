@@ -111,10 +111,6 @@ func TestHostileFrames(t *testing.T) {
 	}
 }
 
-// slowdown allows for a machine that does other things too and for the race detector:
-// the figure itself is logged, and the test holds that the cost stays of its order.
-const slowdown = 20
-
 // answer sends a frame over a real stream and checks what comes back.
 func answer(t *testing.T, wire []byte, ends api.Reason, reject string, status kinegatev1.EventStatus) {
 	t.Helper()
