@@ -17,8 +17,9 @@ import (
 // measure is one measurement of a row, or a part of one.
 type measure = func(ctx context.Context) (float64, error)
 
-// benchmarkMetric runs one Go benchmark and reads a metric of it.
-func benchmarkMetric(folder, name, metric string) measure {
+// benchmarkMetric runs one Go benchmark of the commands and reads a metric of it.
+func benchmarkMetric(name, metric string) measure {
+	const folder = "./service/cmd/kinegate"
 	return func(ctx context.Context) (float64, error) {
 		//nolint:gosec // the arguments are those of the rows
 		output, err := exec.CommandContext(ctx, "go", "test", "-run", "^$", "-bench", anchored(name), folder).CombinedOutput()

@@ -15,11 +15,11 @@ func rows() []row {
 		},
 		{
 			name: "judge stream, server time over judging in process", limit: 1.5, aim: 1.3,
-			measure: benchmarkMetric("./service/cmd/kinegate", "BenchmarkJudgeStream", "x-in-process"),
+			measure: benchmarkMetric("BenchmarkJudgeStream", "x-in-process"),
 		},
 		{
 			name: "p99 of verdicts beside bulk work over alone", limit: 3, aim: 1,
-			measure: benchmarkMetric("./service/cmd/kinegate", "BenchmarkGateBesideBulk", "x-p99"),
+			measure: benchmarkMetric("BenchmarkGateBesideBulk", "x-p99"),
 		},
 		{name: "  verdict on 100 events at 20 % load, median in us", measure: latency("load=20", "us-p50")},
 		{name: "  verdict on 100 events at 20 % load, p99 in us", measure: latency("load=20", "us-p99")},
@@ -35,7 +35,7 @@ func rows() []row {
 		{name: "  the same over a plain C++ loop (-O2)", measure: pairMasses("loop")},
 		{
 			name: "simulated events to a client, rate over in process", limit: 0.6, aim: 0.8, atLeast: true,
-			measure: benchmarkMetric("./service/cmd/kinegate", "BenchmarkGenerateEvents", "of-in-process-rate"),
+			measure: benchmarkMetric("BenchmarkGenerateEvents", "of-in-process-rate"),
 		},
 		{
 			name: "four-body phase space, events a second over numpy", limit: 3, aim: 5, atLeast: true,
@@ -49,5 +49,5 @@ func rows() []row {
 
 // latency reads one figure of the open-loop generator.
 func latency(load, figure string) measure {
-	return benchmarkMetric("./service/cmd/kinegate", "BenchmarkJudgeLatency/"+load, figure)
+	return benchmarkMetric("BenchmarkJudgeLatency/"+load, figure)
 }
