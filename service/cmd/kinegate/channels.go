@@ -118,18 +118,18 @@ func (e *environment) listChannels(
 		if draw {
 			channels = append(channels, reply.GetChannels()...)
 		}
-		done, err := e.reply(reply)
-		if err != nil {
+		request.PageToken = reply.GetNextPageToken()
+		last := request.GetPageToken() == "" || limit > 0 && t.Rows() >= limit
+		if err := e.tell(reply, func() error {
+			if !last {
+				return nil
+			}
+			return e.printChannels(t, request, reply)
+		}); err != nil {
 			return err
 		}
-		request.PageToken = reply.GetNextPageToken()
-		if request.GetPageToken() != "" && (limit == 0 || t.Rows() < limit) {
+		if !last {
 			continue
-		}
-		if !done {
-			if err := e.printChannels(t, request, reply); err != nil {
-				return err
-			}
 		}
 		if draw {
 			if err := picture.save(e, channelsPicture(request.GetInitialParticles(), channels, reply)); err != nil {

@@ -41,12 +41,8 @@ func checkCommand(p program) *cobra.Command {
 					return err
 				}
 				faulty = faulty || len(reply.GetFaults()) > 0
-				if done, err := e.reply(reply); err != nil {
+				if err := e.tell(reply, func() error { return e.describeCheck(name, reply) }); err != nil {
 					return err
-				} else if !done {
-					if err := e.describeCheck(name, reply); err != nil {
-						return err
-					}
 				}
 			}
 			if faulty {

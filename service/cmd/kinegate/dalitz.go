@@ -1,11 +1,13 @@
 package main
 
 import (
+	"context"
 	"fmt"
 	"strings"
 
 	"github.com/spf13/cobra"
 
+	kinegate "example.org/kinegate/clients/go"
 	"example.org/kinegate/proto/column"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 	"example.org/kinegate/service/cmd/kinegate/internal/quantity"
@@ -45,41 +47,34 @@ func dalitzCommand(p program) *cobra.Command {
 				}
 				request.Bands = append(request.Bands, b)
 			}
-			client, closeClient, err := e.connect(c.Context())
+			draw, err := picture.asked()
 			if err != nil {
 				return err
 			}
-			defer closeClient()
-			ctx, cancel := e.calling(c.Context())
-			defer cancel()
-			reply, err := client.Decays.TraceDalitzBoundary(ctx, request)
-			if err != nil {
-				return underline(err, args[0])
-			}
-			if done, err := e.reply(reply); err != nil {
-				return err
-			} else if !done {
-				if err := e.printDalitz(reply, bands, points); err != nil {
-					return err
-				}
-			}
-			if draw, err := picture.asked(); err != nil {
-				return err
-			} else if draw {
-				drawn, err := dalitzPicture(reply, bands)
+			return e.asking(c.Context(), args[0], func(ctx context.Context, client *kinegate.Client) error {
+				reply, err := client.Decays.TraceDalitzBoundary(ctx, request)
 				if err != nil {
 					return err
 				}
-				if err := picture.save(e, drawn); err != nil {
+				if err := e.tell(reply, func() error { return e.printDalitz(reply, bands, points) }); err != nil {
 					return err
 				}
-			}
-			for _, b := range reply.GetBoundaries() {
-				if b.GetState() != kinegatev1.ChannelState_CHANNEL_STATE_CLOSED {
-					return nil
+				if draw {
+					drawn, err := dalitzPicture(reply, bands)
+					if err != nil {
+						return err
+					}
+					if err := picture.save(e, drawn); err != nil {
+						return err
+					}
 				}
-			}
-			return errNo
+				for _, b := range reply.GetBoundaries() {
+					if b.GetState() != kinegatev1.ChannelState_CHANNEL_STATE_CLOSED {
+						return nil
+					}
+				}
+				return errNo
+			})
 		},
 	}
 	e.flags(c)

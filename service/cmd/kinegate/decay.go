@@ -1,11 +1,13 @@
 package main
 
 import (
+	"context"
 	"fmt"
 	"math"
 
 	"github.com/spf13/cobra"
 
+	kinegate "example.org/kinegate/clients/go"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 	"example.org/kinegate/service/cmd/kinegate/internal/quantity"
 	"example.org/kinegate/service/cmd/kinegate/internal/text"
@@ -47,33 +49,24 @@ func decayCommand(p program) *cobra.Command {
 			if err != nil {
 				return err
 			}
-			client, closeClient, err := e.connect(c.Context())
-			if err != nil {
-				return err
-			}
-			defer closeClient()
-			ctx, cancel := e.calling(c.Context())
-			defer cancel()
-			reply, err := client.Decays.DescribeDecay(ctx, request)
-			if err != nil {
-				return underline(err, args[0])
-			}
-			if done, err := e.reply(reply); err != nil {
-				return err
-			} else if !done {
-				if err := e.describeDecay(reply, flags, values); err != nil {
+			return e.asking(c.Context(), args[0], func(ctx context.Context, client *kinegate.Client) error {
+				reply, err := client.Decays.DescribeDecay(ctx, request)
+				if err != nil {
 					return err
 				}
-			}
-			if draw {
-				if err := e.drawDecay(ctx, client, request, reply, &picture); err != nil {
+				if err := e.tell(reply, func() error { return e.describeDecay(reply, flags, values) }); err != nil {
 					return err
 				}
-			}
-			if reply.GetState() == kinegatev1.ChannelState_CHANNEL_STATE_CLOSED {
-				return errNo
-			}
-			return nil
+				if draw {
+					if err := e.drawDecay(ctx, client, request, reply, &picture); err != nil {
+						return err
+					}
+				}
+				if reply.GetState() == kinegatev1.ChannelState_CHANNEL_STATE_CLOSED {
+					return errNo
+				}
+				return nil
+			})
 		},
 	}
 	e.flags(c)

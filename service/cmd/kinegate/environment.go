@@ -131,17 +131,36 @@ func addressText(a net.Addr) string {
 	return a.String()
 }
 
-// reply prints a reply as JSON if that was asked for, and reports whether it did.
-func (e *environment) reply(m proto.Message) (bool, error) {
-	if !e.json {
-		return false, nil
+// asking lets f ask a server within the time that a person waits, and marks the place
+// in text that an answer finds fault with.
+func (e *environment) asking(
+	ctx context.Context, text string, f func(ctx context.Context, client *kinegate.Client) error,
+) error {
+	client, closeClient, err := e.connect(ctx)
+	if err != nil {
+		return err
+	}
+	defer closeClient()
+	ctx, cancel := e.calling(ctx)
+	defer cancel()
+	return underline(f(ctx, client), text)
+}
+
+// tell prints a reply: in its JSON form if that was asked for, else by words, which may
+// be nil.
+func (e *environment) tell(m proto.Message, words func() error) error {
+	switch {
+	case !e.json && words == nil:
+		return nil
+	case !e.json:
+		return words()
 	}
 	text, err := jsonform.Marshal(m)
 	if err != nil {
-		return true, err
+		return err
 	}
 	_, err = fmt.Fprintf(e.out, "%s\n", text)
-	return true, err
+	return err
 }
 
 // calling bounds a unary call.

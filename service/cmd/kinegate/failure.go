@@ -54,6 +54,9 @@ func describeStatus(s *status.Status) string {
 
 // underline shows the place of a fault in a text that the user typed.
 func underline(err error, text string) error {
+	if err == nil {
+		return nil
+	}
 	s, ok := status.FromError(err)
 	if !ok {
 		return err

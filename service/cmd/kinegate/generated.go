@@ -96,7 +96,7 @@ func (g *generated) receive(ctx context.Context, client *kinegate.Client, reques
 		if err != nil {
 			return err
 		}
-		if _, err := g.reply(m); err != nil {
+		if err := g.tell(m, nil); err != nil {
 			return err
 		}
 	}

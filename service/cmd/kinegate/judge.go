@@ -94,7 +94,7 @@ func (j *judgeRun) run(ctx context.Context, files []string) error {
 	err = pump(ctx, gate, open, source.next, func(b *batch[eventfile.Event], v *kinegate.Verdicts) error {
 		sums.add(v)
 		progress.Set(source.read.Load())
-		if done, err := j.reply(v.Block); err != nil || done && j.outFile == "" {
+		if err := j.tell(v.Block, nil); err != nil || j.json && j.outFile == "" {
 			return err
 		}
 		for _, s := range sinks {

@@ -1,12 +1,14 @@
 package main
 
 import (
+	"context"
 	"fmt"
 	"math"
 	"strings"
 
 	"github.com/spf13/cobra"
 
+	kinegate "example.org/kinegate/clients/go"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 	"example.org/kinegate/service/cmd/kinegate/internal/quantity"
 	"example.org/kinegate/service/cmd/kinegate/internal/text"
@@ -38,21 +40,13 @@ func motionCommand(p program) *cobra.Command {
 			if err != nil {
 				return err
 			}
-			client, closeClient, err := e.connect(c.Context())
-			if err != nil {
-				return err
-			}
-			defer closeClient()
-			ctx, cancel := e.calling(c.Context())
-			defer cancel()
-			reply, err := client.Reactions.ConvertMotion(ctx, request)
-			if err != nil {
-				return err
-			}
-			if done, err := e.reply(reply); err != nil || done {
-				return err
-			}
-			return e.printMotion(reply)
+			return e.asking(c.Context(), "", func(ctx context.Context, client *kinegate.Client) error {
+				reply, err := client.Reactions.ConvertMotion(ctx, request)
+				if err != nil {
+					return err
+				}
+				return e.tell(reply, func() error { return e.printMotion(reply) })
+			})
 		},
 	}
 	e.flags(c)

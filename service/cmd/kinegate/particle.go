@@ -67,10 +67,10 @@ func (e *environment) showParticle(ctx context.Context, client *kinegate.Client,
 	if err != nil {
 		return err
 	}
-	if done, err := e.reply(reply); done {
-		return err
-	}
-	p := reply.GetParticle()
+	return e.tell(reply, func() error { return e.describeParticle(reply.GetParticle(), reply.GetTableVersion()) })
+}
+
+func (e *environment) describeParticle(p *kinegatev1.Particle, tableVersion string) error {
 	e.print("%s  %s, particle number %d", p.GetName(), p.GetDescription(), p.GetParticleNumber())
 	t := text.NewTable("", "")
 	t.Row("mass", massText(p))
@@ -90,7 +90,7 @@ func (e *environment) showParticle(ctx context.Context, client *kinegate.Client,
 		t.Row("remark", "no Breit-Wigner: mass and width only say where the state lies")
 	}
 	t.Row("source", p.GetSource())
-	t.Row("table version", reply.GetTableVersion())
+	t.Row("table version", tableVersion)
 	if err := t.Write(e.out); err != nil {
 		return err
 	}
@@ -109,13 +109,14 @@ func (e *environment) listParticles(ctx context.Context, client *kinegate.Client
 		if err != nil {
 			return err
 		}
-		if done, err := e.reply(reply); err != nil {
-			return err
-		} else if !done {
+		if err := e.tell(reply, func() error {
 			for _, p := range reply.GetParticles() {
 				t.Row(fmt.Sprint(p.GetParticleNumber()), p.GetName(), quantity.Format(p.GetMassGev(), quantity.Energy, 7),
 					lifetimeText(p), chargeText(p.GetChargeThirds()), p.GetDescription())
 			}
+			return nil
+		}); err != nil {
+			return err
 		}
 		version = reply.GetTableVersion()
 		if request.PageToken = reply.GetNextPageToken(); request.GetPageToken() == "" {

@@ -8,6 +8,7 @@ import (
 
 	"github.com/spf13/cobra"
 
+	kinegate "example.org/kinegate/clients/go"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 	"example.org/kinegate/service/cmd/kinegate/internal/plot"
 	"example.org/kinegate/service/cmd/kinegate/internal/quantity"
@@ -63,14 +64,13 @@ func (d *drawing) save(e *environment, p *plot.Picture) error {
 func (e *environment) photonProcess(
 	ctx context.Context, request *kinegatev1.DescribePhotonProcessRequest,
 ) (*kinegatev1.DescribePhotonProcessResponse, error) {
-	client, closeClient, err := e.connect(ctx)
-	if err != nil {
-		return nil, err
-	}
-	defer closeClient()
-	calling, cancel := e.calling(ctx)
-	defer cancel()
-	return client.Photons.DescribePhotonProcess(calling, request)
+	var reply *kinegatev1.DescribePhotonProcessResponse
+	err := e.asking(ctx, "", func(ctx context.Context, client *kinegate.Client) error {
+		var err error
+		reply, err = client.Photons.DescribePhotonProcess(ctx, request)
+		return err
+	})
+	return reply, err
 }
 
 // photonAnswer asks for one process and prints the answer; describe prints it for people.
@@ -82,15 +82,13 @@ func (e *environment) photonAnswer(
 	if err != nil {
 		return nil, err
 	}
-	done, err := e.reply(reply)
-	if err != nil || done {
-		return reply, err
-	}
-	if err := describe(reply); err != nil {
-		return nil, err
-	}
-	e.omissions(reply.GetOmissions(), reply.GetTableVersion())
-	return reply, nil
+	return reply, e.tell(reply, func() error {
+		if err := describe(reply); err != nil {
+			return err
+		}
+		e.omissions(reply.GetOmissions(), reply.GetTableVersion())
+		return nil
+	})
 }
 
 // omissions prints what an answer leaves out.

@@ -1,11 +1,13 @@
 package main
 
 import (
+	"context"
 	"fmt"
 	"math"
 
 	"github.com/spf13/cobra"
 
+	kinegate "example.org/kinegate/clients/go"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 	"example.org/kinegate/service/cmd/kinegate/internal/plot"
 	"example.org/kinegate/service/cmd/kinegate/internal/quantity"
@@ -44,38 +46,27 @@ func photonFieldCommand(p program) *cobra.Command {
 			if err != nil {
 				return err
 			}
-			client, closeClient, err := e.connect(c.Context())
-			if err != nil {
-				return err
-			}
-			defer closeClient()
-			ctx, cancel := e.calling(c.Context())
-			defer cancel()
-			reply, err := client.Photons.DescribePhotonField(ctx, q)
-			if err != nil {
-				return err
-			}
-			done, err := e.reply(reply)
-			if err != nil {
-				return err
-			}
-			if !done {
-				if err := e.describeField(reply, q); err != nil {
+			return e.asking(c.Context(), "", func(ctx context.Context, client *kinegate.Client) error {
+				reply, err := client.Photons.DescribePhotonField(ctx, q)
+				if err != nil {
 					return err
 				}
-			}
-			if !draw {
-				return nil
-			}
-			asked := q.GetPhotonEnergiesGev()
-			if q.PhotonEnergiesGev = fieldSpan(reply); q.GetPhotonEnergiesGev() == nil {
-				return badInput("--plot: the field absorbs nothing; there is nothing to draw")
-			}
-			curve, err := client.Photons.DescribePhotonField(ctx, q)
-			if err != nil {
-				return err
-			}
-			return picture.save(e, fieldPicture(reply, curve, q, len(asked) <= mostMarks))
+				if err := e.tell(reply, func() error { return e.describeField(reply, q) }); err != nil {
+					return err
+				}
+				if !draw {
+					return nil
+				}
+				asked := q.GetPhotonEnergiesGev()
+				if q.PhotonEnergiesGev = fieldSpan(reply); q.GetPhotonEnergiesGev() == nil {
+					return badInput("--plot: the field absorbs nothing; there is nothing to draw")
+				}
+				curve, err := client.Photons.DescribePhotonField(ctx, q)
+				if err != nil {
+					return err
+				}
+				return picture.save(e, fieldPicture(reply, curve, q, len(asked) <= mostMarks))
+			})
 		},
 	}
 	e.flags(c)

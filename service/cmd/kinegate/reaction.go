@@ -1,11 +1,13 @@
 package main
 
 import (
+	"context"
 	"fmt"
 	"strings"
 
 	"github.com/spf13/cobra"
 
+	kinegate "example.org/kinegate/clients/go"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 	"example.org/kinegate/service/cmd/kinegate/internal/quantity"
 	"example.org/kinegate/service/cmd/kinegate/internal/text"
@@ -39,29 +41,20 @@ func reactionCommand(p program) *cobra.Command {
 			if err := extra.read(request); err != nil {
 				return err
 			}
-			client, closeClient, err := e.connect(c.Context())
-			if err != nil {
-				return err
-			}
-			defer closeClient()
-			ctx, cancel := e.calling(c.Context())
-			defer cancel()
-			reply, err := client.Reactions.DescribeReaction(ctx, request)
-			if err != nil {
-				return underline(err, args[0])
-			}
-			if done, err := e.reply(reply); err != nil {
-				return err
-			} else if !done {
-				if err := e.describeReaction(reply); err != nil {
+			return e.asking(c.Context(), args[0], func(ctx context.Context, client *kinegate.Client) error {
+				reply, err := client.Reactions.DescribeReaction(ctx, request)
+				if err != nil {
 					return err
 				}
-			}
-			const open = kinegatev1.ChannelState_CHANNEL_STATE_OPEN
-			if reply.GetState() == kinegatev1.ChannelState_CHANNEL_STATE_CLOSED && reply.GetQuasiFree().GetState() != open {
-				return errNo
-			}
-			return nil
+				if err := e.tell(reply, func() error { return e.describeReaction(reply) }); err != nil {
+					return err
+				}
+				const open = kinegatev1.ChannelState_CHANNEL_STATE_OPEN
+				if reply.GetState() == kinegatev1.ChannelState_CHANNEL_STATE_CLOSED && reply.GetQuasiFree().GetState() != open {
+					return errNo
+				}
+				return nil
+			})
 		},
 	}
 	e.flags(c)

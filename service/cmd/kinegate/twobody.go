@@ -1,10 +1,12 @@
 package main
 
 import (
+	"context"
 	"fmt"
 
 	"github.com/spf13/cobra"
 
+	kinegate "example.org/kinegate/clients/go"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 	"example.org/kinegate/service/cmd/kinegate/internal/quantity"
 	"example.org/kinegate/service/cmd/kinegate/internal/text"
@@ -100,33 +102,24 @@ func twoBodyCommand(p program) *cobra.Command {
 				}
 				*chosen.field(request) = asked
 			}
-			client, closeClient, err := e.connect(c.Context())
-			if err != nil {
-				return err
-			}
-			defer closeClient()
-			ctx, cancel := e.calling(c.Context())
-			defer cancel()
-			reply, err := client.Reactions.SolveTwoBody(ctx, request)
-			if err != nil {
-				return underline(err, args[0])
-			}
-			if done, err := e.reply(reply); err != nil {
-				return err
-			} else if !done {
-				if err := e.printTwoBody(reply, chosen, asked, product); err != nil {
+			return e.asking(c.Context(), args[0], func(ctx context.Context, client *kinegate.Client) error {
+				reply, err := client.Reactions.SolveTwoBody(ctx, request)
+				if err != nil {
 					return err
 				}
-			}
-			if draw {
-				if err := e.drawTwoBody(ctx, client, request, reply, &picture); err != nil {
+				if err := e.tell(reply, func() error { return e.printTwoBody(reply, chosen, asked, product) }); err != nil {
 					return err
 				}
-			}
-			if len(reply.GetProducts()) == 0 || chosen != nil && branchCount(reply) == 0 {
-				return errNo
-			}
-			return nil
+				if draw {
+					if err := e.drawTwoBody(ctx, client, request, reply, &picture); err != nil {
+						return err
+					}
+				}
+				if len(reply.GetProducts()) == 0 || chosen != nil && branchCount(reply) == 0 {
+					return errNo
+				}
+				return nil
+			})
 		},
 	}
 	e.flags(c)
