@@ -112,6 +112,9 @@ type Decay struct {
 	// Released is the parent's mass less those of the daughters in GeV. It is negative
 	// for a decay that needs the parent's width or a daughter's.
 	Released float64
+
+	// sharp says that neither the parent nor a daughter has a width to draw on.
+	sharp bool
 }
 
 // decay checks and classes one decay.
@@ -130,14 +133,15 @@ func (r *Reaction) decay(
 		sharp = sharp && p.Sharp(particle.SharpWidth)
 	}
 	released, side := momentum.Excess(parent.Mass, masses...)
-	d.Released = released
+	d.Released, d.sharp = released, sharp
 	if inclusive {
 		d.Text += " " + remainder
 		return d, nil
 	}
 	d.Class = r.classify(parent, daughters, left, right)
 	list := lawFaults(op, d.Text, differ(AlwaysLaws, left, right), left, right, at)
-	if sharp && side == num.Below {
+	// For the decay that is asked about itself, being closed is an answer.
+	if sharp && side == num.Below && number >= 0 {
 		list = append(list, placed(fault.New(fault.Forbidden, "energy",
 			"left "+fault.Text(parent.Mass)+" GeV, right "+fault.Text(parent.Mass-released)+" GeV",
 			"a parent at least as heavy as its products").In(op).Because("not conserved in "+d.Text), at))

@@ -250,6 +250,9 @@ func (c *Channel) ofDecay(r *Reaction, in InitialState) (Channel, error) {
 	return *c, nil
 }
 
+// remarkDigits is the number of significant digits of a figure in a remark.
+const remarkDigits = 7
+
 // remarks collects what the particles' flags say.
 func (r *Reaction) remarks() []string {
 	var list []string
@@ -268,9 +271,15 @@ func (r *Reaction) remarks() []string {
 		}
 	}
 	for i := range r.Decays {
-		if d := &r.Decays[i]; d.Released < 0 {
-			list = append(list, d.Text+" needs the width of a particle: its nominal masses lack "+fault.Text(-d.Released)+" GeV")
+		if d := &r.Decays[i]; d.Released < 0 && !d.sharp {
+			lack := strconv.FormatFloat(-d.Released, 'g', remarkDigits, 64)
+			list = append(list, d.Text+" needs the width of a particle: its nominal masses lack "+lack+" GeV")
 		}
+	}
+	if len(r.Initial) == 2 && !r.Inclusive && !spinAndC(&r.Initial[0], &r.Initial[1], len(r.Top), func(i int) *particle.Particle {
+		return &r.Products[r.Top[i]].Particle
+	}) {
+		list = append(list, "spin, C or Bose symmetry forbid "+r.headText()+"; these rules are not applied here")
 	}
 	return list
 }

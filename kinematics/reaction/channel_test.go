@@ -4,6 +4,7 @@ import (
 	"errors"
 	"math"
 	"math/rand/v2"
+	"slices"
 	"strconv"
 	"strings"
 	"testing"
@@ -121,6 +122,21 @@ func TestDeficits(t *testing.T) {
 	near("s - m^2", c.Square, 1-1.2754*1.2754)
 	near("mass of the object", c.Collision.CentreOfMass().SqrtS, 1)
 	near("its velocity", c.Collision.CentreOfMass().Beta, 0.6)
+}
+
+// TestSpinRemark: two real photons make no state of spin 1, and the answer says so.
+func TestSpinRemark(t *testing.T) {
+	tab := table(t)
+	for text, forbidden := range map[string]bool{
+		"gamma gamma -> J/psi": true, "gamma gamma -> pi0": false, "gamma gamma -> f2(1270)": false, "gamma gamma -> omega": true,
+		"gamma gamma -> pi+ pi-": false, "gamma p -> p omega": false, "gamma gamma -> X": false, "gamma gamma -> pi0 omega": true,
+	} {
+		c := describe(t, tab, text, reaction.InitialState{Kind: reaction.TotalMass, SqrtS: 4})
+		got := slices.ContainsFunc(c.Remarks, func(s string) bool { return strings.Contains(s, "forbid "+text) })
+		if got != forbidden {
+			t.Errorf("%s: %q, forbidden %t", text, c.Remarks, forbidden)
+		}
+	}
 }
 
 // TestThresholdAgainstExcess finds thresholds of random initial states and holds them

@@ -180,17 +180,7 @@ func (f *finder) take(e entry) bool {
 }
 
 // allowed applies the rules that are no sums. Strangeness, where particles of either
-// strangeness take part. And if SpinAndC is asked for:
-//
-//   - The numbers of particles with half-integer spin on both sides differ by an even
-//     number (angular momentum).
-//   - Two real photons have C = +1: products that all are eigenstates of C must have
-//     the product +1.
-//   - Two real photons make no single state of spin 1, nor one of odd spin and negative
-//     parity (L. D. Landau, Dokl. Akad. Nauk SSSR 60 (1948) 207; C. N. Yang, Phys. Rev.
-//     77 (1950) 242, table I, from memory), which is Bose symmetry.
-//   - Two real photons make no K0_S K0_L alone: C = +1 asks for even orbital angular
-//     momentum, in which the two neutral kaons are alike, as far as CP holds.
+// strangeness take part, and those of spinAndC where they are asked for.
 func (f *finder) allowed(e *entry) bool {
 	s := f.channels.search
 	members := e.members[:e.count]
@@ -205,40 +195,5 @@ func (f *finder) allowed(e *entry) bool {
 			return false
 		}
 	}
-	if !s.SpinAndC {
-		return true
-	}
-	spins := max(s.First.TwiceSpin, 0) + max(s.Second.TwiceSpin, 0)
-	c, eigenstates := 1, true
-	for _, m := range members {
-		p := &f.channels.list[m]
-		spins += max(p.TwiceSpin, 0)
-		c *= p.CParity
-		eigenstates = eigenstates && p.CParity != 0
-	}
-	switch {
-	case spins%2 != 0 && f.spinsKnown(members):
-		return false
-	case s.First.Number != numberPhoton || s.Second.Number != numberPhoton:
-		return true
-	case eigenstates && c < 0:
-		return false
-	case e.count == 1:
-		p := &f.channels.list[members[0]]
-		return p.TwiceSpin != 2 && (p.TwiceSpin%4 != 2 || p.Parity >= 0)
-	case e.count == 2:
-		a, b := &f.channels.list[members[0]], &f.channels.list[members[1]]
-		return !a.EitherStrangeness || !b.EitherStrangeness || a.Number == b.Number
-	}
-	return true
-}
-
-// spinsKnown reports whether the spins of all particles are given.
-func (f *finder) spinsKnown(members []int16) bool {
-	s := f.channels.search
-	known := s.First.TwiceSpin >= 0 && s.Second.TwiceSpin >= 0
-	for _, m := range members {
-		known = known && f.channels.list[m].TwiceSpin >= 0
-	}
-	return known
+	return !s.SpinAndC || spinAndC(&s.First, &s.Second, len(members), func(i int) *particle.Particle { return &f.channels.list[members[i]] })
 }

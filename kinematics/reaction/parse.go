@@ -105,12 +105,23 @@ func (p *parser) particles(names []token) []branch {
 	return list
 }
 
+// noArrow explains a part without an arrow, and points at what was meant for one.
+func (p *parser) noArrow(what string, s *statement, column int, form string) {
+	for _, name := range s.left {
+		if isArrow(name.text) {
+			p.fault(name.column, unknownName(p.table, name.text))
+			return
+		}
+	}
+	p.fault(column, fault.New(fault.Invalid, what, "", form).Because("no arrow"))
+}
+
 // first reads the part before the first comma.
 func (p *parser) first(s *statement) head {
 	var h head
 	const form = `such as "gamma p -> K+ Lambda"`
 	if s.arrow == 0 {
-		p.fault(s.start, fault.New(fault.Invalid, "reaction", "", form).Because("no arrow"))
+		p.noArrow("reaction", s, s.start, form)
 		return h
 	}
 	known := len(p.list)
@@ -144,7 +155,7 @@ func (p *parser) decays(parts []statement) []stated {
 			p.fault(s.start, fault.New(fault.Invalid, "decay", "", form).Because("nothing after the comma"))
 			continue
 		case s.arrow == 0:
-			p.fault(s.left[0].column, fault.New(fault.Invalid, "decay", "", form).Because("no arrow"))
+			p.noArrow("decay", s, s.left[0].column, form)
 			continue
 		case len(s.left) != 1:
 			p.fault(s.start, fault.New(fault.Invalid, "decay", strconv.Itoa(len(s.left))+" parents", form).

@@ -70,7 +70,7 @@ func unknownName(t *particle.Table, name string) *fault.Error {
 	switch {
 	case name == "+":
 		return e.Because("particles stand side by side, with blanks and no plus sign between them")
-	case strings.ContainsAny(name, "→⟶⇒") || name == "=>" || name == "-" || name == ">":
+	case isArrow(name):
 		return e.Because("the arrow is written ->")
 	case name == remainder:
 		return e.Because("X stands once, among the products of the first part")
@@ -80,6 +80,24 @@ func unknownName(t *particle.Table, name string) *fault.Error {
 		e.Nearest = t.Nearest(strings.TrimLeft(name, "0123456789"))
 		return e.Because("no particle; one that occurs several times is written several times")
 	}
+	if spelled := asciiName(name); spelled != name {
+		e.Nearest = t.Nearest(spelled)
+		return e.Because("names are written in ASCII")
+	}
 	e.Nearest = t.Nearest(name)
 	return e.Because("unknown particle")
+}
+
+// isArrow reports whether a name is an arrow in another form than ->.
+func isArrow(name string) bool {
+	return strings.ContainsAny(name, "→⟶⇒") || name == "=>" || name == "-" || name == ">"
+}
+
+// asciiName writes Greek letters and raised or long signs in the way that names have.
+func asciiName(name string) string {
+	return strings.NewReplacer(
+		"γ", "gamma", "η", "eta", "μ", "mu", "µ", "mu", "ν", "nu", "π", "pi", "ρ", "rho", "τ", "tau", "φ", "phi", "ϕ", "phi",
+		"ψ", "psi", "ω", "omega", "Δ", "Delta", "Λ", "Lambda", "Ξ", "Xi", "Σ", "Sigma", "Υ", "Upsilon", "Ω", "Omega",
+		"⁺", "+", "⁻", "-", "−", "-", "–", "-", "⁰", "0", "′", "'",
+	).Replace(name)
 }

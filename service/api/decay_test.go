@@ -79,6 +79,20 @@ func TestKaonInFlight(t *testing.T) {
 	}
 }
 
+// TestDescribeDecayClosed: between sharp states a decay that lacks energy is an answer.
+func TestDescribeDecayClosed(t *testing.T) {
+	m, err := describeDecay(t, &kinegatev1.DescribeDecayRequest{Decay: "pi0 -> mu+ mu-"})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if m.GetState() != kinegatev1.ChannelState_CHANNEL_STATE_CLOSED || len(m.GetDaughters()) != 0 || len(m.GetRemarks()) != 0 {
+		t.Errorf("%v", m)
+	}
+	if r := m.GetReleasedEnergyGev(); math.Abs(r-(0.1349768-2*0.1056583755)) > 1e-9 {
+		t.Errorf("released %g", r)
+	}
+}
+
 func TestDescribeDecayRefuses(t *testing.T) {
 	cases := []struct {
 		name    string
@@ -90,7 +104,7 @@ func TestDescribeDecayRefuses(t *testing.T) {
 		{"empty", &kinegatev1.DescribeDecayRequest{}, FieldInvalid, "decay", ""},
 		{"reaction", &kinegatev1.DescribeDecayRequest{Decay: "gamma p -> p pi0"}, FieldInvalid, "decay", "one particle"},
 		{"typo", &kinegatev1.DescribeDecayRequest{Decay: "Lamda -> p pi-"}, FieldInvalid, "decay", "Lambda"},
-		{"too heavy", &kinegatev1.DescribeDecayRequest{Decay: "pi0 -> mu+ mu-"}, LawBroken, "decay", "energy"},
+		{"too heavy inside", &kinegatev1.DescribeDecayRequest{Decay: "eta -> gamma pi0, pi0 -> mu+ mu-"}, LawBroken, "decay", "energy"},
 		{"broken law", &kinegatev1.DescribeDecayRequest{Decay: "Lambda -> p pi0"}, LawBroken, "decay", "charge"},
 		{"motion not set", &kinegatev1.DescribeDecayRequest{Decay: "Lambda -> p pi-", Parent: &kinegatev1.BeamMotion{}}, FieldInvalid, "parent", ""},
 		{"energy below mass", &kinegatev1.DescribeDecayRequest{Decay: "Lambda -> p pi-", Parent: total(1)}, FieldInvalid, "parent.total_energy_gev", ">="},

@@ -73,8 +73,15 @@ func Because(reason Reason, err error) *Failure {
 }
 
 // In returns the failure that Explain finds in err with prefix in front of every
-// field path. A fault without a field of its own gets the prefix as its field.
+// field path, and in its sentence where one field is at fault. A fault without a field
+// of its own gets the prefix as its field.
 func In(prefix string, err error) *Failure {
+	_, explained := errors.AsType[*Failure](err)
+	if e, ok := errors.AsType[*fault.Error](err); ok && !explained && e.Column == 0 {
+		c := *e
+		c.Field = join(prefix, e.Field)
+		return Explain(&c)
+	}
 	f := *Explain(err)
 	f.Violations = append([]Violation(nil), f.Violations...)
 	for i := range f.Violations {

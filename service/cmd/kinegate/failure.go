@@ -36,15 +36,27 @@ func explain(err error) (text string, code int) {
 	return describeStatus(s), exitFailed
 }
 
+// byFlags puts the flags of the commands in place of the fields that they fill.
+func byFlags(message string) string {
+	return strings.NewReplacer(
+		"beam.total_energy_gev", "--beam in GeV", "beam.kinetic_energy_gev", "--beam-kinetic in GeV", "beam.momentum_gev", "--beam-momentum in GeV",
+		"beam1.total_energy_gev", "--beam in GeV", "beam1.kinetic_energy_gev", "--beam-kinetic in GeV", "beam1.momentum_gev", "--beam-momentum in GeV",
+		"beam2.total_energy_gev", "--beam2 in GeV", "beam2.kinetic_energy_gev", "--beam2-kinetic in GeV", "beam2.momentum_gev", "--beam2-momentum in GeV",
+		"parent.total_energy_gev", "--parent in GeV", "parent.kinetic_energy_gev", "--parent-kinetic in GeV", "parent.momentum_gev", "--parent-momentum in GeV",
+		"angle_between_beams_rad", "--angle in rad", "sqrt_s_gev", "--sqrt-s in GeV",
+		"opening_angles_rad", "--opening-angle in rad", "rest_frame_cosines", "--rest-cosine", "laboratory_angles_rad", "--lab-angle in rad",
+	).Replace(message)
+}
+
 // describeStatus prints a status of the server: its sentence, the other fields at
 // fault, and a mark under the place in the text where there is one.
 func describeStatus(s *status.Status) string {
-	lines := []string{s.Message()}
+	lines := []string{byFlags(s.Message())}
 	for _, d := range s.Details() {
 		if detail, ok := d.(*errdetails.BadRequest); ok {
 			for _, v := range detail.GetFieldViolations() {
 				if v.GetDescription() != "" && !strings.Contains(s.Message(), v.GetDescription()) {
-					lines = append(lines, "  "+v.GetField()+": "+v.GetDescription())
+					lines = append(lines, "  "+byFlags(v.GetField()+": "+v.GetDescription()))
 				}
 			}
 		}
