@@ -16,10 +16,15 @@ from importlib.metadata import PackageNotFoundError, version
 
 from kinegate import plot, questions, units
 from kinegate.aio import AsyncClient, AsyncJudgeStream, connect_async
+from kinegate.annihilation import Annihilation
+from kinegate.backscatter import Backscatter
+from kinegate.bound import Bound
 from kinegate.channel import Limits, Range
 from kinegate.client import Client, connect
+from kinegate.compton import Compton
 from kinegate.dalitz import Boundary, Dalitz
 from kinegate.decay import Decay
+from kinegate.detector import DetectorCheck, DetectorLike
 from kinegate.errors import (
     BlockRejected,
     Cancelled,
@@ -41,15 +46,18 @@ from kinegate.errors import (
     UsageError,
 )
 from kinegate.events import COORDINATES, NEGATIVE, NEUTRAL, PHOTON, POSITIVE, Events
+from kinegate.faults import Check
 from kinegate.generation import Generated, GenerationCheck, GenerationLike, Truth
 from kinegate.generationstream import AsyncGenerationStream, GenerationStream
 from kinegate.info import Info
 from kinegate.initial import Beams
 from kinegate.motion import Motion
 from kinegate.openchannels import OpenChannel, OpenChannels
+from kinegate.paircreation import FieldPair, PairCreation
 from kinegate.particle import Particle, Particles
 from kinegate.parts import BeamCandidates, ClusterPositions, Polarisation, VertexGroups, Vertices
 from kinegate.photonfield import PhotonField
+from kinegate.photonprocess import ByHelicity, PhotonProcess
 from kinegate.question import Answer, Question
 from kinegate.reaction import Reaction
 from kinegate.selection import Hypothesis, Selection, SelectionCheck, SelectionLike
@@ -71,23 +79,32 @@ __all__ = [
     "NEUTRAL",
     "PHOTON",
     "POSITIVE",
+    "Annihilation",
     "Answer",
     "AsyncClient",
     "AsyncGenerationStream",
     "AsyncJudgeStream",
+    "Backscatter",
     "BeamCandidates",
     "Beams",
     "BlockRejected",
+    "Bound",
     "Boundary",
+    "ByHelicity",
     "Cancelled",
+    "Check",
     "Client",
     "ClusterPositions",
+    "Compton",
     "Dalitz",
     "DeadlineExceeded",
     "Decay",
+    "DetectorCheck",
+    "DetectorLike",
     "Entries",
     "Events",
     "FailedPrecondition",
+    "FieldPair",
     "FieldViolation",
     "Generated",
     "GenerationCheck",
@@ -106,10 +123,12 @@ __all__ = [
     "Observable",
     "OpenChannel",
     "OpenChannels",
+    "PairCreation",
     "Particle",
     "Particles",
     "PermissionDenied",
     "PhotonField",
+    "PhotonProcess",
     "Polarisation",
     "Question",
     "Range",

@@ -15,6 +15,7 @@ from typing import TYPE_CHECKING, Any, Concatenate, ParamSpec, Self, TypeVar
 import grpc
 
 from kinegate import errors, questions
+from kinegate.bound import bound
 from kinegate.client import described, target
 from kinegate.events import Events
 from kinegate.generation import GenerationLike, sample
@@ -30,8 +31,9 @@ if TYPE_CHECKING:
     from collections.abc import AsyncIterator, Awaitable, Callable, Coroutine, Iterable, Mapping
     from types import TracebackType
 
+    from kinegate.bound import Bound
     from kinegate.question import Question
-    from kinegate.v1 import verdict_pb2
+    from kinegate.v1 import generation_pb2, verdict_pb2
     from kinegate.verdicts import Verdicts
 
 __all__ = ["AsyncClient", "AsyncJudgeStream", "connect_async"]
@@ -121,15 +123,29 @@ class AsyncClient:
     decay = _asks(questions.decay)
     dalitz = _asks(questions.dalitz)
     photon_field = _asks(questions.photon_field)
+    pair_creation = _asks(questions.pair_creation)
+    field_pair = _asks(questions.field_pair)
+    annihilation = _asks(questions.annihilation)
+    compton = _asks(questions.compton)
+    backscatter = _asks(questions.backscatter)
     info = _asks(questions.info)
     check = _asks(questions.check)
     check_generation = _asks(questions.check_generation)
+    check_detector = _asks(questions.check_detector)
 
     async def selection(self, source: SelectionLike) -> Selection:
         """Check a selection and return it ready to judge with."""
         if isinstance(source, Selection):
             return source
         return (await self.check(source)).selection()
+
+    async def generation(self, source: GenerationLike) -> generation_pb2.Generation:
+        """Check a generation and return it as understood."""
+        return (await self.check_generation(source)).generation()
+
+    async def bound(self, source: GenerationLike, channel: int = 0, draws: int = 100_000) -> Bound:
+        """Measure the weights of a channel, to choose its unweighting bound."""
+        return await self.ask(bound(await self.generation(source), channel, draws))
 
     async def judge_block(
         self, events: Events, selection: SelectionLike, *, entries: str = "accepted"
@@ -153,9 +169,7 @@ class AsyncClient:
 
         Arguments as for :meth:`kinegate.Client.generate`.
         """
-        chosen = source
-        if isinstance(source, (str, Path)):
-            chosen = (await self.check_generation(source)).generation()
+        chosen = await self.generation(source) if isinstance(source, (str, Path)) else source
         wanted = sample(chosen, count, first, truth=truth, events_per_block=events_per_block)
 
         def call(request: Any) -> Any:

@@ -12,6 +12,7 @@ from typing import TYPE_CHECKING, Any, Concatenate, ParamSpec, Self, TypeVar
 import grpc
 
 from kinegate import errors, questions
+from kinegate.bound import bound
 from kinegate.generation import GenerationLike, sample
 from kinegate.generationstream import GenerationStream
 from kinegate.judge import Settings
@@ -24,8 +25,10 @@ if TYPE_CHECKING:
     from collections.abc import Callable, Iterable, Mapping
     from types import TracebackType
 
+    from kinegate.bound import Bound
     from kinegate.events import Events
     from kinegate.question import Question
+    from kinegate.v1 import generation_pb2
     from kinegate.verdicts import Verdicts
 
 __all__ = ["Client", "connect", "target"]
@@ -143,9 +146,15 @@ class Client:
     decay = _asks(questions.decay)
     dalitz = _asks(questions.dalitz)
     photon_field = _asks(questions.photon_field)
+    pair_creation = _asks(questions.pair_creation)
+    field_pair = _asks(questions.field_pair)
+    annihilation = _asks(questions.annihilation)
+    compton = _asks(questions.compton)
+    backscatter = _asks(questions.backscatter)
     info = _asks(questions.info)
     check = _asks(questions.check)
     check_generation = _asks(questions.check_generation)
+    check_detector = _asks(questions.check_detector)
 
     def selection(self, source: SelectionLike) -> Selection:
         """Check a selection and return it ready to judge with.
@@ -165,6 +174,37 @@ class Client:
         if isinstance(source, Selection):
             return source
         return self.check(source).selection()
+
+    def generation(self, source: GenerationLike) -> generation_pb2.Generation:
+        """Check a generation and return it as understood.
+
+        Args:
+            source: A YAML file or its text, a mapping in the same form, or a message.
+
+        Raises:
+            InvalidArgument: The generation has faults, all of which the exception holds.
+
+        >>> client.generation({"seed": 4, "channels": [{"reaction": "omega -> pi0 gamma"}]}).seed
+        4
+        """
+        return self.check_generation(source).generation()
+
+    def bound(self, source: GenerationLike, channel: int = 0, draws: int = 100_000) -> Bound:
+        """Measure the weights of a channel, to choose its unweighting bound.
+
+        Args:
+            source: Anything that :meth:`generation` takes.
+            channel: Position of the channel, from 0.
+            draws: Number of draws, up to 10,000,000.
+
+        >>> client.bound({"channels": [{"reaction": "D+ -> K- pi+ pi+ pi0"}]}, draws=20_000)
+        weights of 20000 draws
+        largest weight        0...
+        mean weight           0...
+        kept with this bound  ...%
+        kept with bound 1     ...%
+        """
+        return self.ask(bound(self.generation(source), channel, draws))
 
     def judge_block(
         self, events: Events, selection: SelectionLike, *, entries: str = "accepted"
@@ -213,9 +253,7 @@ class Client:
         >>> sum(map(len, energies))  # pi0, gamma, gamma and gamma of each
         4000
         """
-        chosen = source
-        if isinstance(source, (str, Path)):
-            chosen = self.check_generation(source).generation()
+        chosen = self.generation(source) if isinstance(source, (str, Path)) else source
         wanted = sample(chosen, count, first, truth=truth, events_per_block=events_per_block)
 
         def call(request: Any) -> Any:

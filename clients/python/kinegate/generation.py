@@ -5,24 +5,29 @@ from __future__ import annotations
 from collections.abc import Mapping
 from dataclasses import dataclass
 from pathlib import Path
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING, Any, Final, Self
 
 import numpy as np
-from google.protobuf import json_format
 
 from kinegate import columns
-from kinegate.errors import FieldViolation, InvalidArgument
+from kinegate.errors import InvalidArgument
 from kinegate.events import Events
-from kinegate.question import Answer, Question
+from kinegate.faults import Check, fill, parse
+from kinegate.parts import join_offsets
+from kinegate.question import Question
 from kinegate.tables import Table
 from kinegate.v1 import generation_pb2
 
 if TYPE_CHECKING:
+    from collections.abc import Sequence
+
     from numpy.typing import NDArray
 
     from kinegate.v1 import event_pb2, truth_pb2
 
 __all__ = ["Generated", "GenerationCheck", "GenerationLike", "Sample", "Truth", "check_generation"]
+
+_FOUR: Final = ("energy_gev", "px_gev", "py_gev", "pz_gev")
 
 GenerationLike = str | Path | Mapping[str, Any] | generation_pb2.Generation
 """A YAML file or its text, or a mapping or a message of the same form."""
@@ -34,6 +39,11 @@ class Truth:
 
     The particles of an event are every product and every daughter, depth first in the
     order of the reaction's text; an event of weight 0 has none.
+
+    >>> sample = client.generate({"channels": [{"reaction": "omega -> pi0 gamma"}]}, 100).read()
+    >>> photon = sample.truth.row(1)
+    >>> len(photon["energy_gev"]), f"{photon['energy_gev'][0]:.1f} GeV"
+    (100, '0.4 GeV')
     """
 
     ids: NDArray[np.int64]
@@ -56,8 +66,8 @@ class Truth:
     """Row of the parent within the event, -1 for none, shape (particles,)."""
     object_particles: NDArray[np.int16]
     """Row of the particle behind each measured object, -1 for noise, shape (objects,)."""
-    message: truth_pb2.TruthColumns
-    """The reply itself, for vertices, proper times and beam candidates."""
+    message: truth_pb2.TruthColumns | None
+    """The reply, for vertices, proper times and beam candidates; None for joined blocks."""
 
     @classmethod
     def from_message(cls, message: truth_pb2.TruthColumns) -> Truth:
@@ -77,13 +87,49 @@ class Truth:
             message,
         )
 
+    @classmethod
+    def concatenate(cls, parts: Sequence[Truth]) -> Self:
+        """Join the truth of blocks that follow one another."""
+        names = ("ids", "channels", "weights", "particle_numbers", "masses", "parents")
+        joined: dict[str, Any] = {
+            name: np.concatenate([getattr(p, name) for p in parts])
+            for name in (*names, "object_particles")
+        }
+        for name in ("initial_state", "momentum"):
+            found = [getattr(p, name) for p in parts]
+            joined[name] = {n: np.concatenate([f[n] for f in found]) for n in _FOUR}
+        offsets = join_offsets([p.particle_offsets for p in parts])
+        return cls(particle_offsets=offsets, message=None, **joined)
+
+    def row(self, number: int) -> dict[str, NDArray[np.float64]]:
+        """Return the momentum of one particle of every event, columns of shape (events,).
+
+        Args:
+            number: Its row within the event, as `GenerationStream.products` counts them.
+                NaN stands where an event has no such row.
+        """
+        rows = self.particle_offsets[:-1] + number
+        there = rows < self.particle_offsets[1:]
+        found: dict[str, NDArray[np.float64]] = {}
+        for name, column in self.momentum.items():
+            found[name] = np.full(len(rows), np.nan)
+            found[name][there] = column[rows[there]]
+        return found
+
 
 @dataclass(frozen=True, eq=False)
 class Generated:
-    """Consecutive events of a sample."""
+    """Consecutive events of a sample.
+
+    >>> stream = client.generate({"channels": [{"reaction": "omega -> pi0 gamma"}]}, 1000)
+    >>> stream.read()
+    <events 0 to 999, truth only>
+    """
 
     first_event: int
     """Number of the first event."""
+    event_count: int
+    """Number of events."""
     events: Events | None
     """The events as measured, ready to be judged; None without a detector.
 
@@ -99,7 +145,30 @@ class Generated:
         events = Events.from_message(message.events) if message.HasField("events") else None
         if events is not None and truth is not None:
             events.extra.update(channel=truth.channels, weight=truth.weights)
-        return cls(message.first_event, events, truth)
+        return cls(message.first_event, message.event_count, events, truth)
+
+    @classmethod
+    def concatenate(cls, parts: Sequence[Generated]) -> Self:
+        """Join blocks that follow one another."""
+        if not parts:
+            raise ValueError("no blocks to join")
+        events = [p.events for p in parts if p.events is not None]
+        truth = [p.truth for p in parts if p.truth is not None]
+        return cls(
+            parts[0].first_event,
+            sum(map(len, parts)),
+            Events.concatenate(events) if events else None,
+            Truth.concatenate(truth) if truth else None,
+        )
+
+    def __len__(self) -> int:
+        return self.event_count
+
+    def __repr__(self) -> str:
+        span = f"events {self.first_event} to {self.first_event + len(self) - 1}"
+        if self.events is None:
+            return f"<{span}, truth only>"
+        return f"<{span}{', with truth' if self.truth else ''}: {self.events!r}>"
 
 
 class Sample:
@@ -142,6 +211,18 @@ class Sample:
         return None
 
 
+def generation_message(source: GenerationLike) -> generation_pb2.Generation:
+    """Make the message of a generation that is not in a file."""
+    generation = generation_pb2.Generation()
+    if isinstance(source, generation_pb2.Generation):
+        generation.CopyFrom(source)
+    elif isinstance(source, Mapping):
+        parse(source, generation)
+    else:
+        raise TypeError("a generation from a file is checked first: client.generation(file)")
+    return generation
+
+
 def sample(
     source: GenerationLike,
     count: int,
@@ -153,16 +234,9 @@ def sample(
     """Make the state of a stream of simulated events."""
     if count < 0 or first < 0:
         raise ValueError("count and first must be at least 0")
-    generation = generation_pb2.Generation()
-    if isinstance(source, generation_pb2.Generation):
-        generation.CopyFrom(source)
-    elif isinstance(source, Mapping):
-        json_format.ParseDict(dict(source), generation)
-    else:
-        raise TypeError("a generation from a file is checked first: client.check_generation(file)")
     return Sample(
         generation_pb2.GenerateEventsRequest(
-            generation=generation,
+            generation=generation_message(source),
             first_event=first,
             event_count=count,
             block_event_count=events_per_block,
@@ -171,16 +245,13 @@ def sample(
     )
 
 
-class GenerationCheck(Answer[generation_pb2.CheckGenerationResponse]):
-    """The result of a check: faults, or a digest and the channels as understood."""
+class GenerationCheck(Check[generation_pb2.CheckGenerationResponse]):
+    """The result of a check: faults, or a digest and the channels as understood.
 
-    @property
-    def faults(self) -> list[FieldViolation]:
-        """Every fault, with its place in the text where there is one."""
-        return [
-            FieldViolation(f"{f.line}:{f.column}: {f.field}" if f.line else f.field, f.message)
-            for f in self.message.faults
-        ]
+    >>> check = client.check_generation({"channels": [{"reaction": "omega -> pi0 gamma"}]})
+    >>> check.channels
+    {'omega -> pi0 gamma': ['pi0', 'gamma']}
+    """
 
     @property
     def digest(self) -> str:
@@ -194,20 +265,11 @@ class GenerationCheck(Answer[generation_pb2.CheckGenerationResponse]):
 
     def generation(self) -> generation_pb2.Generation:
         """Return the generation as understood, or raise InvalidArgument with all faults."""
-        if self.faults:
-            lines = "; ".join(f"{f.field}: {f.description}" for f in self.faults)
-            raise InvalidArgument(
-                f"the generation has {len(self.faults)} faults: {lines}",
-                code="INVALID_ARGUMENT",
-                violations=self.faults,
-            )
+        self.refuse_faults("generation", InvalidArgument)
         return self.message.generation
 
-    def tables(self) -> list[Table]:
-        """Return the faults, or the channels."""
-        if self.faults:
-            rows = [[f.field, f.description] for f in self.faults]
-            return [Table(f"{len(rows)} faults", ("field", "fault"), rows)]
+    def understood(self) -> list[Table]:
+        """Return the channels."""
         rows = [[c.name, c.reaction, "; ".join(c.remarks)] for c in self.message.channels]
         title = self.message.generation.name
         return [Table(title, ("channel", "reaction", "remarks"), rows, f"digest {self.digest}")]
@@ -223,19 +285,11 @@ def check_generation(source: GenerationLike) -> Question[GenerationCheck]:
     'channels[0].reaction'
     """
     request = generation_pb2.CheckGenerationRequest()
-    if isinstance(source, generation_pb2.Generation):
-        request.generation.CopyFrom(source)
-    elif isinstance(source, Mapping):
-        json_format.ParseDict(dict(source), request.generation)
-    elif isinstance(source, Path) or "\n" not in source:
-        request.yaml = Path(source).read_text(encoding="utf-8")
-    else:
-        request.yaml = source
+    fill(request, "generation", source)
     return Question(
         "GenerationService", "CheckGeneration", request, lambda r: GenerationCheck(r[0])
     )
 
 
 def _four(message: event_pb2.EnergyMomentumColumns) -> dict[str, NDArray[np.float64]]:
-    names = ("energy_gev", "px_gev", "py_gev", "pz_gev")
-    return {name: columns.view(getattr(message, name), np.float64) for name in names}
+    return {name: columns.view(getattr(message, name), np.float64) for name in _FOUR}

@@ -22,7 +22,12 @@ __all__ = ["PhotonField", "photon_field"]
 
 
 class PhotonField(Answer[photonfield_pb2.DescribePhotonFieldResponse]):
-    """What a field does to photons; energies in GeV, columns of shape (photons,)."""
+    """What a field does to photons; energies in GeV, columns of shape (photons,).
+
+    >>> field = client.photon_field(["1 PeV"], temperature=2.7255, distance="1e20 m")
+    >>> field.optical_depth.round(3), kinegate.units.format_energy(field.strongest[0], 3)
+    (array([0.362]), '2.21 PeV')
+    """
 
     @property
     def density(self) -> float:
@@ -53,6 +58,26 @@ class PhotonField(Answer[photonfield_pb2.DescribePhotonFieldResponse]):
     def optical_depth(self) -> NDArray[np.float64]:
         """Absorption times the distance asked for: exp(-depth) of the photons pass."""
         return np.array([a.optical_depth for a in self.message.absorptions])
+
+    @property
+    def temperature(self) -> float | None:
+        """Temperature of a black body at its redshift in kelvin; None for a power law."""
+        has = self.message.HasField("temperature_k")
+        return self.message.temperature_k if has else None
+
+    @property
+    def threshold(self) -> float | None:
+        """Energy below which no photon is absorbed; None for a black body."""
+        has = self.message.HasField("threshold_gev")
+        return self.message.threshold_gev if has else None
+
+    @property
+    def strongest(self) -> tuple[float, float] | None:
+        """Photon absorbed most as (energy, mean free path in metre); None for a power law."""
+        if not self.message.HasField("strongest"):
+            return None
+        found = self.message.strongest
+        return found.photon_energy_gev, found.mean_free_path_m
 
     def tables(self) -> list[Table]:
         """Return the photons asked for."""

@@ -18,11 +18,27 @@ if TYPE_CHECKING:
 
     from numpy.typing import ArrayLike
 
+    from kinegate.backscatter import Backscatter
+    from kinegate.compton import Compton
     from kinegate.dalitz import Dalitz
+    from kinegate.detector import DetectorCheck
     from kinegate.openchannels import OpenChannels
+    from kinegate.photonfield import PhotonField
     from kinegate.reaction import Reaction
 
-__all__ = ["dalitz", "histogram", "ladder", "products", "pulls"]
+__all__ = [
+    "absorption",
+    "acceptance",
+    "dalitz",
+    "histogram",
+    "ladder",
+    "products",
+    "pulls",
+    "scattering",
+    "spectrum",
+]
+
+_METRES_PER_KPC = 3.0856775814913673e19
 
 
 def ladder(channels: OpenChannels, most: int = 20, axes: Any = None) -> Any:
@@ -166,6 +182,95 @@ def histogram(
     axes.set_ylabel("entries")
     if label:
         axes.legend(frameon=False)
+    return axes
+
+
+def absorption(field: PhotonField, label: str = "", axes: Any = None) -> Any:
+    """Draw how far photons come in a field: mean free path in kiloparsec against energy.
+
+    Args:
+        field: The answer of `client.photon_field`.
+        label: Name of the field in the legend.
+        axes: Where to draw.
+
+    >>> field = client.photon_field([1e5, 1e6, 1e7], temperature=2.7255)
+    >>> kinegate.plot.absorption(field).get_yscale()
+    'log'
+    """
+    axes = _axes(axes)
+    paths = field.mean_free_path / _METRES_PER_KPC
+    seen = np.isfinite(paths)
+    axes.plot(field.energies[seen], paths[seen], label=label or None)
+    axes.set_xscale("log")
+    axes.set_yscale("log")
+    axes.set_xlabel("photon energy (GeV)")
+    axes.set_ylabel("mean free path (kpc)")
+    if label:
+        axes.legend(frameon=False)
+    return axes
+
+
+def spectrum(beam: Backscatter, label: str = "", axes: Any = None) -> Any:
+    """Draw the spectrum of a photon beam that light makes.
+
+    Args:
+        beam: The answer of `client.backscatter` with `points`.
+        label: Name of the beam in the legend.
+        axes: Where to draw.
+
+    >>> beam = client.backscatter("e-", beam="3 GeV", light="351.1 nm", points=100)
+    >>> kinegate.plot.spectrum(beam).get_xlabel()
+    'photon energy (GeV)'
+    """
+    axes = _axes(axes)
+    axes.plot(beam.energies, beam.spectrum, label=label or None)
+    axes.set_ylim(bottom=0)
+    axes.set_xlabel("photon energy (GeV)")
+    axes.set_ylabel("cross-section (barn/GeV)")
+    if label:
+        axes.legend(frameon=False)
+    return axes
+
+
+def scattering(answer: Compton, label: str = "", axes: Any = None) -> Any:
+    """Draw how a photon is scattered: cross-section for each solid angle against angle.
+
+    Args:
+        answer: The answer of `client.compton` with `angles`.
+        label: Name of the curve in the legend.
+        axes: Where to draw.
+
+    >>> answer = client.compton("e-", photon="1 MeV", angles=["0 deg", "90 deg", "180 deg"])
+    >>> kinegate.plot.scattering(answer).get_xlabel()
+    'angle of the photon (deg)'
+    """
+    axes = _axes(axes)
+    axes.plot(answer.angles / DEGREE, answer.differential * 1e3, label=label or None)
+    axes.set_ylim(bottom=0)
+    axes.set_xlabel("angle of the photon (deg)")
+    axes.set_ylabel("cross-section (mb/sr)")
+    if label:
+        axes.legend(frameon=False)
+    return axes
+
+
+def acceptance(detector: DetectorCheck, axes: Any = None) -> Any:
+    """Draw which polar angles each part of a detector sees.
+
+    >>> tracker = {"theta": {"min_rad": 0.2, "max_rad": 2.4}, "constant": 0.015,
+    ...            "angle_sigma_rad": 0.003}
+    >>> axes = kinegate.plot.acceptance(client.check_detector({"tracker": tracker}))
+    >>> [label.get_text() for label in axes.get_yticklabels()]
+    ['tracker']
+    """
+    spans = detector.acceptance
+    axes = _axes(axes, height=0.4 * len(spans) + 1)
+    for height, span in enumerate(spans.values()):
+        axes.barh(height, (span.high - span.low) / DEGREE, left=span.low / DEGREE, height=0.5)
+    axes.set_yticks(range(len(spans)), list(spans))
+    axes.set_xlim(0, 180)
+    axes.set_xlabel("angle from +z (deg)")
+    axes.spines[["top", "right"]].set_visible(False)
     return axes
 
 

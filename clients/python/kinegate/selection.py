@@ -7,10 +7,9 @@ from dataclasses import dataclass, field
 from pathlib import Path
 from typing import TYPE_CHECKING, Any, Final
 
-from google.protobuf import json_format
-
-from kinegate.errors import FieldViolation, SelectionFaulty
-from kinegate.question import Answer, Question
+from kinegate.errors import SelectionFaulty
+from kinegate.faults import Check, fill
+from kinegate.question import Question
 from kinegate.tables import Table
 from kinegate.v1 import selection_pb2
 from kinegate.verdicts import Verdicts
@@ -81,16 +80,12 @@ SelectionLike = str | Path | Mapping[str, Any] | selection_pb2.Selection | Selec
 """A YAML file or its text, a mapping or a message of the same form, or a checked selection."""
 
 
-class SelectionCheck(Answer[selection_pb2.CheckSelectionResponse]):
-    """The result of a check: faults, or a digest and the hypotheses as understood."""
+class SelectionCheck(Check[selection_pb2.CheckSelectionResponse]):
+    """The result of a check: faults, or a digest and the hypotheses as understood.
 
-    @property
-    def faults(self) -> list[FieldViolation]:
-        """Every fault, with its place in the text where there is one."""
-        return [
-            FieldViolation(f"{f.line}:{f.column}: {f.field}" if f.line else f.field, f.message)
-            for f in self.message.faults
-        ]
+    >>> client.check("../../testdata/selections/dimuon.yaml").hypotheses["Z"].reaction
+    '-> mu+ mu-'
+    """
 
     @property
     def digest(self) -> str:
@@ -104,23 +99,13 @@ class SelectionCheck(Answer[selection_pb2.CheckSelectionResponse]):
 
     def selection(self) -> Selection:
         """Return the selection, or raise SelectionFaulty with all faults."""
-        if self.faults:
-            lines = "; ".join(f"{f.field}: {f.description}" for f in self.faults)
-            raise SelectionFaulty(
-                f"the selection has {len(self.faults)} faults: {lines}",
-                code="INVALID_ARGUMENT",
-                reason="SELECTION_INVALID",
-                violations=self.faults,
-            )
+        self.refuse_faults("selection", SelectionFaulty, "SELECTION_INVALID")
         source = selection_pb2.SelectionSource(inline=self.message.selection)
         groups = [g.name for g in self.message.selection.groups]
         return Selection(source, self.digest, self.hypotheses, groups)
 
-    def tables(self) -> list[Table]:
-        """Return the faults, or the hypotheses."""
-        if self.faults:
-            rows = [[f.field, f.description] for f in self.faults]
-            return [Table(f"{len(rows)} faults", ("field", "fault"), rows)]
+    def understood(self) -> list[Table]:
+        """Return the hypotheses."""
         rows = [[h.name, h.reaction, ", ".join(h.observables)] for h in self.hypotheses.values()]
         title = self.message.selection.name
         return [Table(title, ("hypothesis", "reaction", "records"), rows, f"digest {self.digest}")]
@@ -139,17 +124,8 @@ def check(source: SelectionLike) -> Question[SelectionCheck]:
     11:64: hypotheses[1].condition.window.invariant_mass.max_gev
     """
     request = selection_pb2.CheckSelectionRequest()
-    if isinstance(source, Selection):
-        request.selection.CopyFrom(source.source.inline)
-    elif isinstance(source, selection_pb2.Selection):
-        request.selection.CopyFrom(source)
-    elif isinstance(source, Mapping):
-        json_format.ParseDict(dict(source), request.selection)
-    elif isinstance(source, Path) or "\n" not in source:
-        # A text of one line is the name of a file: no selection fits on one.
-        request.yaml = Path(source).read_text(encoding="utf-8")
-    else:
-        request.yaml = source
+    given = source.source.inline if isinstance(source, Selection) else source
+    fill(request, "selection", given)
     return Question("SelectionService", "CheckSelection", request, lambda r: SelectionCheck(r[0]))
 
 

@@ -41,6 +41,7 @@ __all__ = [
     "angle",
     "energy",
     "format_angle",
+    "format_cross_section",
     "format_energy",
     "format_length",
     "format_time",
@@ -93,6 +94,7 @@ _UNITS: Final[dict[str, dict[str, int]]] = {
     "angle": {"urad": -6, "mrad": -3, "rad": 0, "deg": 0},
     "length": {"fm": -15, "pm": -12, "nm": -9, "um": -6, "mm": -3, "cm": -2, "m": 0, "km": 3},
     "time": {"as": -18, "fs": -15, "ps": -12, "ns": -9, "us": -6, "ms": -3, "s": 0},
+    "cross-section": {"ab": -18, "fb": -15, "pb": -12, "nb": -9, "ub": -6, "mb": -3, "b": 0},
     "frequency": {"Hz": 0, "kHz": 3, "MHz": 6, "GHz": 9, "THz": 12, "PHz": 15},
 }
 _EXAMPLES: Final = {
@@ -100,6 +102,7 @@ _EXAMPLES: Final = {
     "angle": "25 deg",
     "length": "20 cm",
     "time": "1.5 ns",
+    "cross-section": "1 mb",
     "frequency": "400 Hz",
 }
 _FORM: Final = re.compile(
@@ -223,6 +226,15 @@ def format_angle(value: float, digits: int = 5) -> str:
     '27.101 deg'
     """
     return f"{_digits(value / DEGREE, digits)} deg"
+
+
+def format_cross_section(value: float, digits: int = 5) -> str:
+    """Write a cross-section given in barn, in the unit that suits it.
+
+    >>> format_cross_section(0.17006316)
+    '170.06 mb'
+    """
+    return _scaled(value, "cross-section", digits)
 
 
 def format_length(value: float, digits: int = 5) -> str:

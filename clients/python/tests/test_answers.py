@@ -147,6 +147,30 @@ def test_bare_stub_beside_the_client(client: kinegate.Client) -> None:
     assert reply_photon.compton.at_rest.edge_gev == pytest.approx(477.3e-6, rel=2e-4)
 
 
+# Invented.
+DETECTOR = {
+    "name": "hall",
+    "calorimeter": {
+        "theta": {"min_rad": 0.1, "max_rad": 2.6},
+        "stochastic": 0.028,
+        "constant": 0.012,
+        "noise_gev": 0.002,
+        "theta_sigma_rad": 0.01,
+        "phi_sigma_rad": 0.01,
+        "threshold_gev": 0.03,
+    },
+    "tracker": {
+        "theta": {"min_rad": 0.17, "max_rad": 2.4},
+        "constant": 0.015,
+        "per_gev": 0.01,
+        "angle_sigma_rad": 0.003,
+    },
+    "recoil": {"theta": {"min_rad": 0.17, "max_rad": 2.4}, "angle_sigma_rad": 0.008},
+    "tagger": {"edges_gev": [1.2, 1.3, 1.4], "time_sigma_ns": 1.5},
+    "vertex": {"sigma_x_m": 0.001, "sigma_y_m": 0.001, "sigma_z_m": 0.002},
+}
+
+
 @pytest.mark.parametrize(
     "ask",
     [
@@ -160,6 +184,15 @@ def test_bare_stub_beside_the_client(client: kinegate.Client) -> None:
         lambda c: c.particles("eta"),
         lambda c: c.photon_field([1e6], temperature=2.7, distance=1e20),
         lambda c: c.info(),
+        lambda c: c.pair_creation("e-", photon="1 TeV", photon2="1 eV", cosines=[0.0]),
+        lambda c: c.pair_creation("mu-", sqrt_s="1 MeV", max_cosine=0.9),
+        lambda c: c.field_pair("e-", target="p"),
+        lambda c: c.annihilation("e-", kinetic=0, cosines=[0.5]),
+        lambda c: c.compton("e-", photon="1 MeV", angles=["90 deg"]),
+        lambda c: c.backscatter("e-", beam="3 GeV", light="532 nm", collimators=["1 mrad"]),
+        lambda c: c.check_detector(DETECTOR),
+        lambda c: c.check_detector({"tracker": {}}),
+        lambda c: c.bound({"channels": [{"reaction": "omega -> pi0 gamma"}]}, draws=100),
     ],
 )
 def test_answers_show_themselves(client: kinegate.Client, ask: object) -> None:

@@ -127,6 +127,68 @@ def test_broken_stream_goes_on(client: kinegate.Client) -> None:
     assert (energy == np.concatenate([t.momentum["energy_gev"] for t in whole])).all()
 
 
+@pytest.mark.parametrize("kind", ["synchronous", "asyncio"])
+def test_frozen_servers_are_left_for_another(client: kinegate.Client, kind: str) -> None:
+    truth = client.generate(GENERATION, 40_000).read().truth
+    gaps: list[float] = []
+    blocks: list[kinegate.Generated] = []
+
+    def took(block: kinegate.Generated, since: float) -> None:
+        gaps.append(time.monotonic() - since)
+        blocks.append(block)
+        time.sleep(0.01)
+
+    async def fetch(address: str) -> int:
+        async with kinegate.connect_async(address) as aio:
+            stream = await aio.generate(GENERATION, 40_000)
+            since = time.monotonic()
+            async for block in stream:
+                took(block, since)
+                since = time.monotonic()
+            return stream.reconnects
+
+    with replicas(2) as both:
+        address = addresses(both, "general")
+
+        def trouble() -> None:
+            time.sleep(0.5)
+            for replica in both:
+                replica.freeze()
+            time.sleep(4)
+            both[1].thaw()
+
+        thread = threading.Thread(target=trouble)
+        thread.start()
+        if kind == "asyncio":
+            reconnects = asyncio.run(fetch(address))
+        else:
+            with kinegate.connect(address) as frail:
+                stream = frail.generate(GENERATION, 40_000)
+                since = time.monotonic()
+                for block in stream:
+                    took(block, since)
+                    since = time.monotonic()
+                reconnects = stream.reconnects
+        thread.join()
+    found = kinegate.Generated.concatenate(blocks).truth
+    assert found is not None
+    assert truth is not None
+    assert (found.ids == np.arange(40_000)).all()
+    assert (found.momentum["energy_gev"] == truth.momentum["energy_gev"]).all()
+    assert 1 <= reconnects <= 4
+    # A silence of 3 s, then maybe one of 6 s with the server that stays frozen.
+    assert max(gaps) < 13
+
+
+def test_without_a_server_patience_ends() -> None:
+    with kinegate.connect("127.0.0.1:1") as nobody:
+        stream = nobody.generate(GENERATION, 10, patience=0.1)
+        with pytest.raises(kinegate.Unavailable, match="no word"):
+            list(stream)
+        with pytest.raises(kinegate.UsageError, match="generate anew"):
+            list(stream)
+
+
 def test_faults_of_a_generation(client: kinegate.Client, tmp_path: Path) -> None:
     path = tmp_path / "generation.yaml"
     path.write_text("channels:\n  - reaction: gamma p -> p ata\n")
