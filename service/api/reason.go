@@ -52,6 +52,8 @@ const (
 
 	// MessageTooLarge marks a message over the transport's limit.
 	MessageTooLarge Reason = "MESSAGE_TOO_LARGE"
+	// HeadersTooLarge marks a request whose headers are over their limit.
+	HeadersTooLarge Reason = "HEADERS_TOO_LARGE"
 	// MessageTooCostly marks a message that would need too much memory decoded.
 	MessageTooCostly Reason = "MESSAGE_TOO_COSTLY"
 	// ReplyTooLarge marks a request whose reply could pass the transport's limit.
@@ -122,6 +124,7 @@ func Reasons() []Meaning {
 		{DigestGone, codes.FailedPrecondition, false},
 		{StreamProtocolBroken, codes.FailedPrecondition, false},
 		{MessageTooLarge, codes.ResourceExhausted, false},
+		{HeadersTooLarge, codes.ResourceExhausted, false},
 		{MessageTooCostly, codes.ResourceExhausted, false},
 		{ReplyTooLarge, codes.ResourceExhausted, false},
 		{WorkBudgetUsed, codes.ResourceExhausted, false},

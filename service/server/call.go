@@ -2,6 +2,7 @@ package server
 
 import (
 	"context"
+	"encoding/binary"
 	"errors"
 	"fmt"
 	"io"
@@ -10,9 +11,7 @@ import (
 	"time"
 
 	"google.golang.org/grpc"
-	"google.golang.org/grpc/codes"
 	"google.golang.org/grpc/metadata"
-	"google.golang.org/grpc/status"
 	"google.golang.org/protobuf/proto"
 
 	"example.org/kinegate/service/api"
@@ -22,6 +21,8 @@ import (
 // says about it in the end.
 type call struct {
 	grpc.ServerStream
+
+	transport transportStream
 
 	ctx    context.Context //nolint:containedctx // a ServerStream carries its context
 	stream bool            // it may last
@@ -75,23 +76,49 @@ func (c *call) RecvMsg(m any) error {
 	return nil
 }
 
-// receive receives into a frame and counts it.
+// Before each message stand a byte that says whether it is compressed and its length.
+const (
+	messageHeaderBytes = 5
+	plain, compressed  = 0, 1
+)
+
+// receive receives one message and counts it. What is over the limit is refused by its
+// announced length, before any of it is read.
 func (c *call) receive(in *incoming) error {
-	if err := c.ServerStream.RecvMsg(in); err != nil {
-		if errors.Is(err, io.EOF) {
-			return io.EOF
-		}
+	var header [messageHeaderBytes]byte
+	if err := c.transport.ReadMessageHeader(header[:]); err != nil {
 		return receiveFailure(err)
 	}
 	if c.waiting != nil {
 		c.waiting.Stop()
 	}
+	length := int64(binary.BigEndian.Uint32(header[1:]))
+	switch {
+	case header[0] == compressed:
+		return compressionRefused("this message")
+	case header[0] != plain:
+		return api.Refuse(api.MessageUndecodable, "the header of the message is malformed")
+	case length > int64(c.limits.MessageBytes):
+		return tooLarge(length, int64(c.limits.MessageBytes))
+	}
+	data, err := c.transport.Read(int(length))
+	if err != nil {
+		return receiveFailure(err)
+	}
+	defer data.Free()
+	in.read(data)
 	if in.fault != nil {
 		return in.fault
 	}
 	c.received.Add(1)
-	c.receivedBytes.Add(int64(in.size))
+	c.receivedBytes.Add(length)
 	return nil
+}
+
+// compressionRefused is the failure of a call or message that comes compressed.
+func compressionRefused(what string) *api.Failure {
+	return api.Refuse(api.CompressionUnsupported, what+" is compressed, and only identity is understood",
+		"supported", "identity")
 }
 
 // SendHeader sends the headers now.
@@ -123,14 +150,12 @@ func (c *call) SendMsg(m any) error {
 	return nil
 }
 
-// receiveFailure names what the transport has refused and answered already, for the
-// record.
+// receiveFailure is the failure of a message that does not come whole; io.EOF is the end.
 func receiveFailure(err error) error {
-	s, ok := status.FromError(err)
-	if !ok || s.Code() != codes.Internal {
-		return err
+	if errors.Is(err, io.ErrUnexpectedEOF) {
+		return &api.Failure{Reason: api.MessageUndecodable, Message: "the message is cut short", Cause: err}
 	}
-	return &api.Failure{Reason: api.MessageUndecodable, Message: s.Message(), Cause: err}
+	return err
 }
 
 // Names of the metadata that calls carry.

@@ -9,16 +9,36 @@ import (
 	"example.org/kinegate/service/api"
 )
 
-// incoming is a message to receive. The codec puts what is wrong with it into fault
-// instead of failing: gRPC answers a codec that fails by itself, without an
-// ErrorInfo.
+// incoming is a message to receive. What is wrong with its bytes ends in fault.
 type incoming struct {
 	message  proto.Message // nil for a message that nobody wants
 	borrowed *api.Borrowed // set where the message may keep the buffer
 	limits   api.Limits
 
-	size  int
 	fault *api.Failure
+}
+
+// read checks the wire form and decodes it.
+func (in *incoming) read(data mem.BufferSlice) {
+	if in.message == nil {
+		return
+	}
+	buffer := data.MaterializeToBuffer(api.Buffers)
+	defer buffer.Free()
+	if in.fault = checkWire(buffer.ReadOnlyData(), in.message, int64(in.limits.DecodedBytes)); in.fault != nil {
+		return
+	}
+	if err := in.decode(buffer); err != nil {
+		in.fault = undecodable(in.message, err)
+	}
+}
+
+// decode reads the message from its checked wire form.
+func (in *incoming) decode(buffer mem.Buffer) error {
+	if in.borrowed != nil {
+		return in.borrowed.Decode(buffer)
+	}
+	return proto.Unmarshal(buffer.ReadOnlyData(), in.message) //nolint:wrapcheck // the caller names the message
 }
 
 // outgoing is a message to send, encoded already: a reply that does not encode or is
@@ -27,7 +47,7 @@ type outgoing struct {
 	data mem.BufferSlice
 }
 
-// codec turns messages to bytes and back. It knows only the two frames above.
+// codec hands encoded messages to gRPC. It reads none: calls do that themselves.
 type codec struct{}
 
 // Name is the content subtype.
@@ -42,38 +62,9 @@ func (codec) Marshal(v any) (mem.BufferSlice, error) {
 	return out.data, nil
 }
 
-// Unmarshal reads an incoming message.
-func (codec) Unmarshal(data mem.BufferSlice, v any) error {
-	in, ok := v.(*incoming)
-	if !ok {
-		return fmt.Errorf("cannot receive a %T", v)
-	}
-	in.size = data.Len()
-	if in.size > in.limits.MessageBytes {
-		in.fault = tooLarge(int64(in.size), int64(in.limits.MessageBytes))
-		return nil
-	}
-	if in.message == nil {
-		return nil
-	}
-	buffer := data.MaterializeToBuffer(api.Buffers)
-	defer buffer.Free()
-	wire := buffer.ReadOnlyData()
-	if in.fault = checkWire(wire, in.message, int64(in.limits.DecodedBytes)); in.fault != nil {
-		return nil
-	}
-	if err := in.decode(buffer); err != nil {
-		in.fault = undecodable(in.message, err)
-	}
-	return nil
-}
-
-// decode reads the message from its checked wire form.
-func (in *incoming) decode(buffer mem.Buffer) error {
-	if in.borrowed != nil {
-		return in.borrowed.Decode(buffer)
-	}
-	return proto.Unmarshal(buffer.ReadOnlyData(), in.message) //nolint:wrapcheck // the caller names the message
+// Unmarshal is never called.
+func (codec) Unmarshal(_ mem.BufferSlice, v any) error {
+	return fmt.Errorf("cannot receive a %T", v)
 }
 
 // encode returns the frame for a message, or why it cannot be sent.

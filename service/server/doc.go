@@ -22,10 +22,12 @@
 // bytes that do not decode, messages over the limit and unknown methods be answered
 // through the registry of reasons like all else.
 //
-// The transport refuses some calls before any of this and without an ErrorInfo: messages
-// above twice the limit (RESOURCE_EXHAUSTED), compressed messages (UNIMPLEMENTED), lists
-// of headers over the limit (the stream or the connection ends), requests that are not
-// gRPC (an HTTP status). A deadline that the caller itself set passes in the caller.
+// Messages are read frame by frame below gRPC's own reading, and lists of headers are
+// measured as soon as they are there, so that what is over a limit or compressed is
+// answered with its reason as well. Without an ErrorInfo remain: compressions other than
+// gzip (UNIMPLEMENTED), lists of headers over four times the limit (the stream ends),
+// requests that are not gRPC (an HTTP status). A deadline that the caller itself set
+// passes in the caller.
 //
 // # Reload
 //

@@ -114,6 +114,9 @@ func (f *front) answer(c *call, body func() error) error {
 		if err := f.authorise(c, c.use); err != nil {
 			return err
 		}
+		if name := c.transport.RecvCompress(); name != "" && name != "identity" {
+			return compressionRefused("this call").With("compression", name)
+		}
 		if err := f.admit(c); err != nil {
 			return err
 		}
@@ -196,21 +199,43 @@ func unknownMethod(method string) *api.Failure {
 	return api.Refuse(api.MethodUnknown, "this listener does not serve "+strconv.Quote(method), "method", method)
 }
 
-// tapped refuses paths that are not /service/method before gRPC does so without an
-// ErrorInfo.
+// tapped refuses, as soon as the headers are read, what gRPC would refuse without an
+// ErrorInfo: paths that are not /service/method, and lists of headers over the limit.
 func (f *front) tapped(ctx context.Context, info *tap.Info) (context.Context, error) {
-	if rest, ok := strings.CutPrefix(info.FullMethodName, "/"); ok && strings.Contains(rest, "/") {
+	var failure *api.Failure
+	limit := int64(f.current.Load().options.HeaderLimit)
+	rest, rooted := strings.CutPrefix(info.FullMethodName, "/")
+	switch size := headerListBytes(info.Header); {
+	case size > limit:
+		failure = api.OverLimit(api.HeadersTooLarge, "the size of the request's headers in bytes,", size, limit,
+			"send less metadata")
+	case !rooted || !strings.Contains(rest, "/"):
+		failure = unknownMethod(info.FullMethodName)
+	default:
 		return ctx, nil
 	}
-	f.metrics.Rejected(string(api.MethodUnknown))
-	return ctx, unknownMethod(info.FullMethodName).Status(f.reference()).Err()
+	f.metrics.Rejected(string(failure.Reason))
+	return ctx, failure.Status(f.reference()).Err()
+}
+
+// headerListBytes is the size of a list of headers as HTTP/2 counts it: 32 bytes for each
+// beside its name and value.
+func headerListBytes(header metadata.MD) int64 {
+	const each = 32
+	size := 0
+	for name, values := range header {
+		for _, v := range values {
+			size += len(name) + len(v) + each
+		}
+	}
+	return int64(size)
 }
 
 // begin starts the record of a call.
 func (f *front) begin(method, label string, stream grpc.ServerStream) *call {
 	ctx := stream.Context()
 	c := &call{
-		ServerStream: stream, ctx: ctx, method: method, label: label, begun: time.Now(),
+		ServerStream: stream, transport: transportOf(stream), ctx: ctx, method: method, label: label, begun: time.Now(),
 		limits: f.limits, reference: f.reference(), use: f.current.Load(),
 		names: names(ctx), trace: traceOf(ctx),
 	}

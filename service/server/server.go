@@ -149,7 +149,9 @@ func (s *Server) rpcFront(d *desk, r rules, stream, connection Bytes, register f
 func newFront(d *desk, r rules, options []grpc.ServerOption) *front {
 	f := &front{desk: d, rules: r, work: &workQueue{metrics: d.metrics}}
 	f.server = grpc.NewServer(append(options,
-		grpc.UnknownServiceHandler(f.unknown), grpc.InTapHandle(f.tapped), grpc.ForceServerCodecV2(codec{}))...)
+		grpc.UnknownServiceHandler(f.unknown), grpc.InTapHandle(f.tapped), grpc.ForceServerCodecV2(codec{}),
+		// gRPC lets calls in that name a compression it knows, so that we can refuse them.
+		grpc.RPCDecompressor(grpc.NewGZIPDecompressor()))...) //nolint:staticcheck // the other way registers it for the whole process
 	return f
 }
 
@@ -157,11 +159,10 @@ func newFront(d *desk, r rules, options []grpc.ServerOption) *front {
 func (s *Server) serverOptions(stream, connection Bytes) []grpc.ServerOption {
 	o := &s.options
 	return []grpc.ServerOption{
-		// The codec answers for messages up to twice the limit with an ErrorInfo; the
-		// transport stops above, before it has read them.
-		grpc.MaxRecvMsgSize(2 * int(o.MessageLimit)),
-		grpc.MaxSendMsgSize(2 * int(o.MessageLimit)),
-		grpc.MaxHeaderListSize(uint32(o.HeaderLimit)),          //nolint:gosec // at most 1 MiB
+		grpc.MaxSendMsgSize(2 * int(o.MessageLimit)), // calls hold replies to the limit themselves
+		// Headers over the limit are answered with an ErrorInfo; the transport drops what is
+		// four times as large, and clients that know its limit do not send it.
+		grpc.MaxHeaderListSize(4 * uint32(o.HeaderLimit)),      //nolint:gosec // at most 1 MiB
 		grpc.MaxConcurrentStreams(uint32(o.ConnectionStreams)), //nolint:gosec // at most 65,536
 		grpc.StaticStreamWindowSize(int32(stream)),             //nolint:gosec // at most 1 GiB
 		grpc.StaticConnWindowSize(int32(connection)),           //nolint:gosec // at most 1 GiB

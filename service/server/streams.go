@@ -6,6 +6,7 @@ import (
 	"time"
 
 	"google.golang.org/grpc"
+	"google.golang.org/grpc/mem"
 	"google.golang.org/grpc/status"
 
 	"example.org/kinegate/service/api"
@@ -75,20 +76,34 @@ func (s *openStreams) watch(ctx context.Context) {
 	}
 }
 
-// statusWriter is what the stream under a call can do beyond its public face: end the
-// call with a status, whatever its handler waits for. A handler cannot be made to return
-// while it receives, and gRPC would answer the end of its context by itself.
-type statusWriter interface {
+// transportStream is what the stream under a call can do beyond its public face.
+//
+// Messages are read from it frame by frame: gRPC's own reading answers a message over the
+// limit or a compressed one by itself, without an ErrorInfo. And it ends a call with a
+// status, whatever its handler waits for: a handler cannot be made to return while it
+// receives, and gRPC would answer the end of its context by itself.
+type transportStream interface {
+	// RecvCompress is the compression that the caller's headers name; empty for none.
+	RecvCompress() string
+	// ReadMessageHeader fills the five bytes before a message.
+	ReadMessageHeader(header []byte) error
+	// Read reads the bytes of a message.
+	Read(n int) (mem.BufferSlice, error)
+	// WriteStatus ends the call.
 	WriteStatus(s *status.Status) error
+}
+
+// transportOf is the stream under a call; nil if gRPC has changed, which every test of a
+// call would notice.
+func transportOf(stream grpc.ServerStream) transportStream {
+	t, _ := grpc.ServerTransportStreamFromContext(stream.Context()).(transportStream)
+	return t
 }
 
 // cut ends the call for a reason; the first one counts.
 func (c *call) cut(why error) {
 	failure := api.Explain(why)
-	if !c.cutFor.CompareAndSwap(nil, failure) {
-		return
-	}
-	if stream, ok := grpc.ServerTransportStreamFromContext(c.ServerStream.Context()).(statusWriter); ok {
-		_ = stream.WriteStatus(failure.Status(c.reference)) // it fails if the caller has gone
+	if c.cutFor.CompareAndSwap(nil, failure) {
+		_ = c.transport.WriteStatus(failure.Status(c.reference)) // it fails if the caller has gone
 	}
 }

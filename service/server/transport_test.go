@@ -2,7 +2,10 @@ package server
 
 import (
 	"context"
+	"fmt"
 	"net"
+	"runtime"
+	"strconv"
 	"strings"
 	"sync"
 	"sync/atomic"
@@ -22,9 +25,9 @@ import (
 	"example.org/kinegate/service/api"
 )
 
-// TestTransportRefusesBeforeUs: what gRPC itself refuses has the right code, though no
-// ErrorInfo, and reaches no handler.
-func TestTransportRefusesBeforeUs(t *testing.T) {
+// TestRefusedBeforeWork: what is refused for its form alone carries its reason with both
+// numbers, is refused before it is read, and reaches no handler.
+func TestRefusedBeforeWork(t *testing.T) {
 	h := &hooked{answer: func(context.Context) (*kinegatev1.GetInfoResponse, error) {
 		t.Error("the handler was reached")
 		return &kinegatev1.GetInfoResponse{}, nil
@@ -32,41 +35,71 @@ func TestTransportRefusesBeforeUs(t *testing.T) {
 	r, _, conn := startHooked(t, h)
 	method := kinegatev1.InfoService_GetInfo_FullMethodName
 	limit := int(r.options.MessageLimit)
-	t.Run("above twice the limit", func(t *testing.T) {
-		err := rawly(t.Context(), conn, method, make([]byte, 2*limit+1))
-		if status.Code(err) != codes.ResourceExhausted || !strings.Contains(err.Error(), "8388609 vs. 8388608") {
-			t.Errorf("got %v", err)
-		}
-	})
-	t.Run("up to twice the limit", func(t *testing.T) {
-		m := wantReason(t, rawly(t.Context(), conn, method, make([]byte, 2*limit)), api.MessageTooLarge)
-		if !strings.Contains(m["limit"], "4194304") {
-			t.Errorf("metadata %v", m)
-		}
-	})
+	for _, size := range []int{limit + 1, 2*limit + 1, 16 * limit} {
+		t.Run(fmt.Sprint(size, " bytes"), func(t *testing.T) {
+			m := wantReason(t, rawly(t.Context(), conn, method, make([]byte, size)), api.MessageTooLarge)
+			if m["limit"] != strconv.Itoa(limit) || m["actual"] != strconv.Itoa(size) {
+				t.Errorf("metadata %v", m)
+			}
+		})
+	}
 	t.Run("compressed", func(t *testing.T) {
 		// The deprecated option compresses without registering the compressor, which
 		// would register it for the server in this process too.
 		zipped, err := grpc.NewClient("passthrough:memory", grpc.WithTransportCredentials(insecure.NewCredentials()),
-			grpc.WithCompressor(grpc.NewGZIPCompressor()), //nolint:staticcheck // see above
-			grpc.WithContextDialer(func(ctx context.Context, _ string) (net.Conn, error) {
-				return r.network.dial(ctx, r.options.GeneralAddress)
-			}))
+			r.inMemory(r.options.GeneralAddress),
+			grpc.WithCompressor(grpc.NewGZIPCompressor())) //nolint:staticcheck // see above
 		if err != nil {
 			t.Fatal(err)
 		}
 		defer func() { _ = zipped.Close() }()
-		err = rawly(t.Context(), zipped, method, make([]byte, limit))
-		if status.Code(err) != codes.Unimplemented {
-			t.Errorf("got %v", err)
+		var before, after runtime.MemStats
+		bomb := make([]byte, 64<<20) // about 64 KiB compressed
+		runtime.ReadMemStats(&before)
+		m := wantReason(t, rawly(t.Context(), zipped, method, bomb), api.CompressionUnsupported)
+		runtime.ReadMemStats(&after)
+		grown := int64(after.TotalAlloc - before.TotalAlloc)
+		figure(t, "T6 64 MiB of zeros, compressed: %d KiB allocated in client and server", grown>>10)
+		if m["supported"] != "identity" || grown > 8<<20 {
+			t.Errorf("metadata %v, %d bytes allocated", m, grown)
 		}
 	})
 	t.Run("large headers", func(t *testing.T) {
 		ctx := metadata.AppendToOutgoingContext(t.Context(), "x-large", strings.Repeat("x", 20<<10))
+		m := wantReason(t, rawly(ctx, conn, method, nil), api.HeadersTooLarge)
+		if actual, err := strconv.Atoi(m["actual"]); err != nil || actual < 20<<10 || m["limit"] != "16384" {
+			t.Errorf("metadata %v", m)
+		}
+	})
+	t.Run("headers that no client should send", func(t *testing.T) {
+		ctx := metadata.AppendToOutgoingContext(t.Context(), "x-large", strings.Repeat("x", 200<<10))
 		if err := rawly(ctx, conn, method, nil); err == nil {
 			t.Error("answered")
 		}
 	})
+}
+
+// TestFramesOfMessages sends message headers that gRPC's own client would not.
+func TestFramesOfMessages(t *testing.T) {
+	r := start(t)
+	for name, data := range map[string][]byte{
+		"compressed without saying how": {1, 0, 0, 0, 0},
+		"unknown flag":                  {2, 0, 0, 0, 0},
+		"largest length there is":       {0, 0xff, 0xff, 0xff, 0xff},
+		"half a header":                 {0, 0, 0},
+		"half a message":                {0, 0, 0, 0, 9, 1, 2},
+	} {
+		t.Run(name, func(t *testing.T) {
+			conn, err := r.network.dial(t.Context(), r.options.GeneralAddress)
+			if err != nil {
+				t.Fatal(err)
+			}
+			defer func() { _ = conn.Close() }()
+			if code := rawCall(t, conn, kinegatev1.InfoService_GetInfo_FullMethodName, data); code != "3" && code != "8" && code != "12" {
+				t.Errorf("grpc-status %q", code)
+			}
+		})
+	}
 }
 
 // TestRawPaths sends paths that gRPC's own client would not.
@@ -82,7 +115,7 @@ func TestRawPaths(t *testing.T) {
 				t.Fatal(err)
 			}
 			defer func() { _ = conn.Close() }()
-			if got := rawCall(t, conn, path); got != "12" {
+			if got := rawCall(t, conn, path, make([]byte, 5)); got != "12" {
 				t.Errorf("grpc-status %q", got)
 			}
 		})
@@ -92,8 +125,8 @@ func TestRawPaths(t *testing.T) {
 	}
 }
 
-// rawCall sends an empty call to a path and returns its grpc-status, or what ended it.
-func rawCall(t *testing.T, conn net.Conn, path string) string {
+// rawCall sends data as a call of a path and returns its grpc-status, or what ended it.
+func rawCall(t *testing.T, conn net.Conn, path string, data []byte) string {
 	t.Helper()
 	_ = conn.SetDeadline(time.Now().Add(5 * time.Second))
 	if _, err := conn.Write([]byte(http2.ClientPreface)); err != nil {
@@ -111,7 +144,7 @@ func rawCall(t *testing.T, conn net.Conn, path string) string {
 		_ = encoder.WriteField(hpack.HeaderField{Name: field[0], Value: field[1]})
 	}
 	_ = framer.WriteHeaders(http2.HeadersFrameParam{StreamID: 1, BlockFragment: []byte(block.String()), EndHeaders: true})
-	_ = framer.WriteData(1, true, []byte{0, 0, 0, 0, 0})
+	_ = framer.WriteData(1, true, data)
 	for {
 		frame, err := framer.ReadFrame()
 		if err != nil {
