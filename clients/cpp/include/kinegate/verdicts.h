@@ -1,0 +1,59 @@
+// Verdicts on one block of events, read from their columns.
+#pragma once
+
+#include <cstddef>
+#include <cstdint>
+#include <string>
+#include <vector>
+
+#include "kinegate/v1/verdict.pb.h"
+
+namespace kinegate {
+
+// Entry is one accepted, or possible, combination of event, hypothesis and beam candidate.
+struct Entry {
+  int hypothesis = 0;  // index in the selection
+  int beam_row = -1;   // candidate within the event; -1: the hypothesis uses none
+  double weight = 1;   // 1, or that of the candidate's time window
+  v1::EntryStatus status = v1::ENTRY_STATUS_UNSPECIFIED;
+  std::vector<std::int16_t> assignment;  // object of each product; -1: none stands for it
+  std::vector<double> observables;       // recorded values; NaN: not computed
+};
+
+// Verdicts is a verdict block. It answers for the events of one event block, in their order.
+class Verdicts {
+ public:
+  // Throws Error where the columns do not fit together.
+  explicit Verdicts(v1::VerdictBlock block);
+
+  // sequence is that of the event block.
+  std::int64_t sequence() const { return block_.sequence(); }
+  // rejected says that the block as a whole was refused; rejection() says why, and there are
+  // no events then.
+  bool rejected() const { return block_.has_rejected(); }
+  const v1::Rejection& rejection() const { return block_.rejected(); }
+  // digest names the selection that judged.
+  const std::string& digest() const { return block_.selection_digest(); }
+
+  std::size_t event_count() const { return static_cast<std::size_t>(block_.event_count()); }
+  // status says whether an event could be judged.
+  v1::EventStatus status(std::size_t event) const;
+  // late says that an event was not judged because the latency budget was used up.
+  bool late(std::size_t event) const { return status(event) == v1::EVENT_STATUS_EXPIRED; }
+  // gate is the decision, after the stream's policy for late events.
+  bool gate(std::size_t event) const;
+  // accepted says whether a hypothesis accepts an event, before prescale, veto and shadow.
+  bool accepted(int hypothesis, std::size_t event) const;
+  // best is the best hypothesis of a declared group, -1 for none.
+  int best(int group, std::size_t event) const;
+  // entries are those of an event; none where the stream did not ask for them.
+  std::vector<Entry> entries(std::size_t event) const;
+
+  // block is the message.
+  const v1::VerdictBlock& block() const { return block_; }
+
+ private:
+  v1::VerdictBlock block_;
+};
+
+}  // namespace kinegate

@@ -1,0 +1,250 @@
+// Columns of events and verdicts, without a server.
+#include <gtest/gtest.h>
+
+#include <cmath>
+#include <cstring>
+#include <functional>
+
+#include "kinegate/error.h"
+#include "kinegate/events.h"
+#include "kinegate/verdicts.h"
+#include "queue.h"
+#include "sample.h"
+
+namespace kinegate {
+namespace {
+
+template <typename T>
+std::string Bytes(std::initializer_list<T> values) {
+  std::string bytes(values.size() * sizeof(T), '\0');
+  std::memcpy(bytes.data(), values.begin(), bytes.size());
+  return bytes;
+}
+
+TEST(MakeBlock, SlicesMoveOffsetsAndKeepRows) {
+  const testing::Sample sample(20);
+  const v1::EventBlock whole = MakeBlock(sample.arrays());
+  const v1::EventBlock part = MakeBlock(sample.arrays(), 5, 3);
+  EXPECT_EQ(part.event_ids(), Bytes<std::int64_t>({5, 6, 7}));
+  const auto first = static_cast<std::size_t>(sample.offsets[5]),
+             last = static_cast<std::size_t>(sample.offsets[8]);
+  EXPECT_EQ(part.object_classes().size(), last - first);
+  EXPECT_EQ(part.momentum_angles().theta_rad(),
+            whole.momentum_angles().theta_rad().substr(8 * first, 8 * (last - first)));
+  std::int32_t offsets[4];
+  std::memcpy(offsets, part.object_offsets().data(), sizeof offsets);
+  EXPECT_EQ(offsets[0], 0);
+  EXPECT_EQ(offsets[3], static_cast<std::int32_t>(last - first));
+  EXPECT_FALSE(part.has_beam());
+  EXPECT_FALSE(part.has_measured_mask());
+  EXPECT_EQ(MakeBlock(sample.arrays(), 20, 0).event_ids().size(), 0U);
+}
+
+TEST(MakeBlock, OptionalColumnsArePresentWhenSet) {
+  testing::Sample sample(2);
+  EventArrays arrays = sample.arrays();
+  const std::vector<std::int32_t> offsets{0, 0, 1};
+  const std::vector<double> energy{1.5}, sigma{0.01}, time{-2}, zeros(2),
+      covariance(6 * sample.classes.size());
+  const std::vector<std::uint8_t> masks(sample.classes.size(), 6);
+  arrays.beam = {offsets, energy, sigma, time};
+  arrays.vertex = {zeros, zeros, zeros, {}};
+  arrays.measured_mask = arrays.species_mask = masks;
+  arrays.covariance = covariance;
+  const v1::EventBlock block = MakeBlock(arrays);
+  EXPECT_EQ(block.beam().energy_gev(), Bytes<double>({1.5}));
+  EXPECT_EQ(block.measured_mask().masks().size(), masks.size());
+  EXPECT_EQ(block.covariance().elements().size(), 8 * covariance.size());
+  EXPECT_TRUE(block.has_vertex());
+  EXPECT_FALSE(block.vertex().has_covariance_m2());
+}
+
+TEST(MakeBlock, FaultsNameColumnAndBothLengths) {
+  const testing::Sample sample(3);
+  const std::vector<double> one{1};
+  const std::vector<std::int32_t> falling{0, 5, 3, static_cast<std::int32_t>(sample.classes.size())};
+  const struct {
+    const char* text;
+    std::function<void(EventArrays*)> spoil;
+  } cases[] = {
+      {"theta has 1 entries", [&](EventArrays* a) { a->values[1] = one; }},
+      {"phi has 0 entries", [&](EventArrays* a) { a->values[2] = {}; }},
+      {"object_offsets has 0 entries where 4", [](EventArrays* a) { a->object_offsets = {}; }},
+      {"covariance has 1 entries", [&](EventArrays* a) { a->covariance = one; }},
+      {"beam.energy_gev has 1 entries where 0",
+       [&](EventArrays* a) {
+         static const std::vector<std::int32_t> none{0, 0, 0, 0};
+         a->beam = {none, one, one, one};
+       }},
+  };
+  for (const auto& c : cases) {
+    EventArrays arrays = sample.arrays();
+    c.spoil(&arrays);
+    try {
+      MakeBlock(arrays);
+      ADD_FAILURE() << c.text;
+    } catch (const Error& error) {
+      EXPECT_NE(std::string(error.what()).find(c.text), std::string::npos) << error.what();
+    }
+  }
+  EventArrays arrays = sample.arrays();
+  arrays.object_offsets = falling;
+  EXPECT_THROW(MakeBlock(arrays, 1, 1), Error);
+  EXPECT_THROW(MakeBlock(sample.arrays(), 2, 2), Error);
+}
+
+v1::VerdictBlock ThreeVerdicts(std::int64_t sequence) {
+  v1::VerdictBlock block;
+  block.set_sequence(sequence);
+  block.set_event_count(3);
+  block.set_statuses(std::string{1, 7, 1});
+  block.set_gate(std::string{1});
+  block.add_hypotheses()->set_accepted(std::string{5});
+  block.add_groups()->set_best(Bytes<std::int16_t>({0, -1, 1}));
+  v1::EntryColumns* e = block.mutable_entries();
+  e->set_offsets(Bytes<std::int32_t>({0, 1, 1, 2}));
+  e->set_hypothesis_indices(Bytes<std::int16_t>({0, 1}));
+  e->set_beam_rows(Bytes<std::int16_t>({-1, 2}));
+  e->set_weights(Bytes<double>({1, -0.5}));
+  e->set_statuses(std::string{1, 2});
+  e->set_assignment_offsets(Bytes<std::int32_t>({0, 1, 3}));
+  e->set_assignments(Bytes<std::int16_t>({4, 0, -1}));
+  e->set_observable_offsets(Bytes<std::int32_t>({0, 0, 1}));
+  e->set_observables(Bytes<double>({0.25}));
+  return block;
+}
+
+TEST(Verdicts, ReadTheirColumns) {
+  const Verdicts v(ThreeVerdicts(4));
+  EXPECT_EQ(v.sequence(), 4);
+  EXPECT_EQ(v.event_count(), 3U);
+  EXPECT_TRUE(v.gate(0));
+  EXPECT_FALSE(v.gate(1));
+  EXPECT_TRUE(v.late(1));
+  EXPECT_TRUE(v.accepted(0, 2));
+  EXPECT_EQ(v.best(0, 1), -1);
+  EXPECT_TRUE(v.entries(1).empty());
+  const Entry entry = v.entries(2).at(0);
+  EXPECT_EQ(entry.beam_row, 2);
+  EXPECT_EQ(entry.weight, -0.5);
+  EXPECT_EQ(entry.status, v1::ENTRY_STATUS_REJECTED);
+  EXPECT_EQ(entry.assignment, (std::vector<std::int16_t>{0, -1}));
+  EXPECT_EQ(entry.observables, std::vector<double>{0.25});
+}
+
+TEST(Verdicts, UnsoundBlocksAreRefused) {
+  const std::function<void(v1::VerdictBlock*)> spoils[] = {
+      [](v1::VerdictBlock* b) { b->set_event_count(4); },
+      [](v1::VerdictBlock* b) { b->set_event_count(-1); },
+      [](v1::VerdictBlock* b) { b->clear_gate(); },
+      [](v1::VerdictBlock* b) { b->mutable_hypotheses(0)->clear_accepted(); },
+      [](v1::VerdictBlock* b) { b->mutable_groups(0)->set_best("x"); },
+      [](v1::VerdictBlock* b) {
+        b->mutable_entries()->set_offsets(Bytes<std::int32_t>({0, 2, 1, 2}));
+      },
+      [](v1::VerdictBlock* b) {
+        b->mutable_entries()->set_offsets(Bytes<std::int32_t>({0, 1, 1, 9}));
+      },
+      [](v1::VerdictBlock* b) { b->mutable_entries()->set_weights("x"); },
+      [](v1::VerdictBlock* b) { b->mutable_entries()->set_assignments("x"); },
+      [](v1::VerdictBlock* b) { b->mutable_entries()->clear_observables(); },
+  };
+  for (const auto& spoil : spoils) {
+    v1::VerdictBlock block = ThreeVerdicts(0);
+    spoil(&block);
+    EXPECT_THROW(Verdicts{block}, Error);
+  }
+}
+
+// A queue with three blocks of which one was sent, to a server with credit for one.
+class QueueRules : public ::testing::Test {
+ protected:
+  QueueRules() {
+    queue_.SetLimit(4);
+    for (int i = 0; i < 3; ++i) {
+      v1::EventBlock block;
+      block.set_event_ids(Bytes<std::int64_t>({1, 2, 3}));
+      queue_.Push({&block, nullptr, nullptr}, true);
+    }
+    EXPECT_EQ(Begin(), 5);
+    v1::Credit credit;
+    credit.set_block_count(1);
+    credit.set_byte_count(1 << 20);
+    queue_.Grant(turn_, credit);
+    EXPECT_EQ(Sent(), 5);
+  }
+
+  // Sent is the sequence of the block to send now, -1 for none.
+  std::int64_t Sent() {
+    const Queue::Next next = queue_.WaitNext(turn_, Clock::now());
+    return next.step == Queue::Step::kBlock ? next.frame->block().sequence() : -1;
+  }
+
+  // Begin begins another turn and returns its first sequence.
+  std::int64_t Begin() {
+    const Queue::Turn turn = queue_.Begin();
+    turn_ = turn.number;
+    return turn.first_sequence;
+  }
+
+  Queue queue_{5, LatePolicy::kAccept};
+  std::int64_t turn_ = 0;
+};
+
+TEST_F(QueueRules, CreditHoldsTheNextBlockBackUntilTheVerdict) {
+  EXPECT_EQ(Sent(), -1);
+  queue_.Settle(turn_, ThreeVerdicts(5));
+  EXPECT_EQ(Sent(), 6);
+}
+
+TEST_F(QueueRules, VerdictsOutOfOrderAreRefused) {
+  EXPECT_THROW(queue_.Settle(turn_, ThreeVerdicts(6)), Error);
+  queue_.Settle(turn_, ThreeVerdicts(5));
+  EXPECT_THROW(queue_.Settle(turn_, ThreeVerdicts(5)), Error);
+  EXPECT_THROW(queue_.Settle(turn_, ThreeVerdicts(6)), Error) << "it was not sent";
+}
+
+TEST_F(QueueRules, ResumeBeginsWithTheFirstWithoutAVerdict) {
+  queue_.Settle(turn_, ThreeVerdicts(5));
+  EXPECT_EQ(Sent(), 6);
+  EXPECT_EQ(Begin(), 6);
+  EXPECT_EQ(Sent(), 6) << "it is sent again";
+}
+
+TEST_F(QueueRules, AnOlderConnectionHasNoSay) {
+  const std::int64_t older = turn_;
+  Begin();
+  EXPECT_EQ(Sent(), 5);
+  queue_.Settle(older, ThreeVerdicts(5));
+  queue_.Interrupt(older);
+  queue_.Drain(older);
+  EXPECT_EQ(queue_.last_answered(), 4);
+  EXPECT_EQ(queue_.WaitNext(older, Clock::now()).step, Queue::Step::kOver);
+  EXPECT_EQ(queue_.WaitNext(turn_, Clock::now()).step, Queue::Step::kWait);
+}
+
+TEST_F(QueueRules, NothingIsSentToAServerThatLeaves) {
+  queue_.Drain(turn_);
+  queue_.Settle(turn_, ThreeVerdicts(5));
+  EXPECT_EQ(Sent(), -1);
+}
+
+TEST_F(QueueRules, LateEventsPassByThePolicyAndAreCounted) {
+  queue_.Settle(turn_, ThreeVerdicts(5));
+  EXPECT_TRUE(queue_.Take()->verdicts.gate(1));
+  EXPECT_EQ(queue_.late_count(), 1);
+}
+
+TEST_F(QueueRules, AFullQueueRefusesUntilAHandlerHasRun) {
+  v1::EventBlock block;
+  EXPECT_TRUE(queue_.Push({&block, nullptr, nullptr}, false));
+  EXPECT_FALSE(queue_.Push({&block, nullptr, nullptr}, false));
+  queue_.Settle(turn_, ThreeVerdicts(5));
+  EXPECT_FALSE(queue_.Push({&block, nullptr, nullptr}, false));
+  queue_.Take();
+  queue_.Taken();
+  EXPECT_TRUE(queue_.Push({&block, nullptr, nullptr}, false));
+}
+
+}  // namespace
+}  // namespace kinegate
