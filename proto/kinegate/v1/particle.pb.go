@@ -390,8 +390,9 @@ type Particle struct {
 	Parity *int32 `protobuf:"varint,14,opt,name=parity,proto3,oneof" json:"parity,omitempty"`
 	// C parity, +1 or -1; absent where not defined or not known.
 	CParity *int32 `protobuf:"varint,15,opt,name=c_parity,json=cParity,proto3,oneof" json:"c_parity,omitempty"`
-	// Baryon number; the nucleon number for nuclei.
-	BaryonNumber int32 `protobuf:"varint,16,opt,name=baryon_number,json=baryonNumber,proto3" json:"baryon_number,omitempty"`
+	// Baryon number in thirds: 3 for a baryon, 3 times the nucleon number for a
+	// nucleus, 1 for a quark.
+	BaryonNumberThirds int32 `protobuf:"varint,16,opt,name=baryon_number_thirds,json=baryonNumberThirds,proto3" json:"baryon_number_thirds,omitempty"`
 	// Electron-family lepton number.
 	ElectronNumber int32 `protobuf:"varint,17,opt,name=electron_number,json=electronNumber,proto3" json:"electron_number,omitempty"`
 	// Muon-family lepton number.
@@ -558,9 +559,9 @@ func (x *Particle) GetCParity() int32 {
 	return 0
 }
 
-func (x *Particle) GetBaryonNumber() int32 {
+func (x *Particle) GetBaryonNumberThirds() int32 {
 	if x != nil {
-		return x.BaryonNumber
+		return x.BaryonNumberThirds
 	}
 	return 0
 }
@@ -669,7 +670,7 @@ const file_kinegate_v1_particle_proto_rawDesc = "" +
 	"\x15ListParticlesResponse\x123\n" +
 	"\tparticles\x18\x01 \x03(\v2\x15.kinegate.v1.ParticleR\tparticles\x12&\n" +
 	"\x0fnext_page_token\x18\x02 \x01(\tR\rnextPageToken\x12#\n" +
-	"\rtable_version\x18\x03 \x01(\tR\ftableVersion\"\x88\t\n" +
+	"\rtable_version\x18\x03 \x01(\tR\ftableVersion\"\x95\t\n" +
 	"\bParticle\x12'\n" +
 	"\x0fparticle_number\x18\x01 \x01(\x03R\x0eparticleNumber\x12\x12\n" +
 	"\x04name\x18\x02 \x01(\tR\x04name\x12\x18\n" +
@@ -686,8 +687,8 @@ const file_kinegate_v1_particle_proto_rawDesc = "" +
 	"\rcharge_thirds\x18\f \x01(\x05R\fchargeThirds\x12!\n" +
 	"\fspin_doubled\x18\r \x01(\x05R\vspinDoubled\x12\x1b\n" +
 	"\x06parity\x18\x0e \x01(\x05H\x05R\x06parity\x88\x01\x01\x12\x1e\n" +
-	"\bc_parity\x18\x0f \x01(\x05H\x06R\acParity\x88\x01\x01\x12#\n" +
-	"\rbaryon_number\x18\x10 \x01(\x05R\fbaryonNumber\x12'\n" +
+	"\bc_parity\x18\x0f \x01(\x05H\x06R\acParity\x88\x01\x01\x120\n" +
+	"\x14baryon_number_thirds\x18\x10 \x01(\x05R\x12baryonNumberThirds\x12'\n" +
 	"\x0felectron_number\x18\x11 \x01(\x05R\x0eelectronNumber\x12\x1f\n" +
 	"\vmuon_number\x18\x12 \x01(\x05R\n" +
 	"muonNumber\x12\x1d\n" +

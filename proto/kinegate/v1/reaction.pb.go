@@ -1083,8 +1083,8 @@ type InclusiveRemainder struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
 	// Electric charge of X in thirds of the positron's.
 	ChargeThirds int32 `protobuf:"varint,1,opt,name=charge_thirds,json=chargeThirds,proto3" json:"charge_thirds,omitempty"`
-	// Baryon number of X.
-	BaryonNumber int32 `protobuf:"varint,2,opt,name=baryon_number,json=baryonNumber,proto3" json:"baryon_number,omitempty"`
+	// Baryon number of X in thirds, as charge_thirds.
+	BaryonNumberThirds int32 `protobuf:"varint,2,opt,name=baryon_number_thirds,json=baryonNumberThirds,proto3" json:"baryon_number_thirds,omitempty"`
 	// Strangeness of X.
 	Strangeness int32 `protobuf:"varint,3,opt,name=strangeness,proto3" json:"strangeness,omitempty"`
 	// Lightest X that the conservation laws allow; empty where none was found.
@@ -1132,9 +1132,9 @@ func (x *InclusiveRemainder) GetChargeThirds() int32 {
 	return 0
 }
 
-func (x *InclusiveRemainder) GetBaryonNumber() int32 {
+func (x *InclusiveRemainder) GetBaryonNumberThirds() int32 {
 	if x != nil {
-		return x.BaryonNumber
+		return x.BaryonNumberThirds
 	}
 	return 0
 }
@@ -1238,10 +1238,10 @@ const file_kinegate_v1_reaction_proto_rawDesc = "" +
 	"\x05decay\x18\x01 \x01(\tR\x05decay\x128\n" +
 	"\vdecay_class\x18\x02 \x01(\x0e2\x17.kinegate.v1.DecayClassR\n" +
 	"decayClass\x12.\n" +
-	"\x13released_energy_gev\x18\x03 \x01(\x01R\x11releasedEnergyGev\"\xe3\x01\n" +
+	"\x13released_energy_gev\x18\x03 \x01(\x01R\x11releasedEnergyGev\"\xf0\x01\n" +
 	"\x12InclusiveRemainder\x12#\n" +
-	"\rcharge_thirds\x18\x01 \x01(\x05R\fchargeThirds\x12#\n" +
-	"\rbaryon_number\x18\x02 \x01(\x05R\fbaryonNumber\x12 \n" +
+	"\rcharge_thirds\x18\x01 \x01(\x05R\fchargeThirds\x120\n" +
+	"\x14baryon_number_thirds\x18\x02 \x01(\x05R\x12baryonNumberThirds\x12 \n" +
 	"\vstrangeness\x18\x03 \x01(\x05R\vstrangeness\x12\x1a\n" +
 	"\blightest\x18\x04 \x03(\tR\blightest\x12/\n" +
 	"\x11lightest_mass_gev\x18\x05 \x01(\x01H\x00R\x0flightestMassGev\x88\x01\x01B\x14\n" +

@@ -356,7 +356,8 @@ type Hypothesis struct {
 	ExtraObjects *ExtraObjects `protobuf:"bytes,7,opt,name=extra_objects,json=extraObjects,proto3" json:"extra_objects,omitempty"`
 	// What must hold; absent means that an assignment is enough.
 	Condition *Condition `protobuf:"bytes,8,opt,name=condition,proto3" json:"condition,omitempty"`
-	// How competing assignments are ranked; absent means in index order.
+	// How competing assignments are ranked; absent means by fit probability where
+	// there is a fit with a degree of freedom, and else in index order.
 	Ranking *Ranking `protobuf:"bytes,9,opt,name=ranking,proto3" json:"ranking,omitempty"`
 	// Observables to report with each entry. Limits are not allowed here.
 	Record []*Window `protobuf:"bytes,10,rep,name=record,proto3" json:"record,omitempty"`
@@ -364,9 +365,14 @@ type Hypothesis struct {
 	// all.
 	PrescaleCount int64 `protobuf:"varint,11,opt,name=prescale_count,json=prescaleCount,proto3" json:"prescale_count,omitempty"`
 	// What acceptance by this hypothesis does to the gate.
-	Role          Role `protobuf:"varint,12,opt,name=role,proto3,enum=kinegate.v1.Role" json:"role,omitempty"`
-	unknownFields protoimpl.UnknownFields
-	sizeCache     protoimpl.SizeCache
+	Role Role `protobuf:"varint,12,opt,name=role,proto3,enum=kinegate.v1.Role" json:"role,omitempty"`
+	// The constrained fit; absent for none. It is made last, for assignments that
+	// every other window of the condition lets through.
+	Fit *Fit `protobuf:"bytes,13,opt,name=fit,proto3" json:"fit,omitempty"`
+	// Report the standard deviation of each recorded observable too.
+	RecordUncertainties bool `protobuf:"varint,14,opt,name=record_uncertainties,json=recordUncertainties,proto3" json:"record_uncertainties,omitempty"`
+	unknownFields       protoimpl.UnknownFields
+	sizeCache           protoimpl.SizeCache
 }
 
 func (x *Hypothesis) Reset() {
@@ -483,13 +489,28 @@ func (x *Hypothesis) GetRole() Role {
 	return Role_ROLE_UNSPECIFIED
 }
 
+func (x *Hypothesis) GetFit() *Fit {
+	if x != nil {
+		return x.Fit
+	}
+	return nil
+}
+
+func (x *Hypothesis) GetRecordUncertainties() bool {
+	if x != nil {
+		return x.RecordUncertainties
+	}
+	return false
+}
+
 // Group is a set of hypotheses of which one can be called best: the one whose
 // best assignment ranks first.
 type Group struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
 	// Name, unique among the groups, written as the selection's.
 	Name string `protobuf:"bytes,1,opt,name=name,proto3" json:"name,omitempty"`
-	// Names of two or more hypotheses, all with a ranking of the same kind.
+	// Names of two or more hypotheses, all ranked in the same way: all by closest
+	// masses or all by fit probability.
 	Hypotheses    []string `protobuf:"bytes,2,rep,name=hypotheses,proto3" json:"hypotheses,omitempty"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
@@ -548,6 +569,10 @@ type ProductMeasurement struct {
 	Measurement Measurement `protobuf:"varint,2,opt,name=measurement,proto3,enum=kinegate.v1.Measurement" json:"measurement,omitempty"`
 	// Take the mass from the event's mass column instead of the particle table.
 	MassFromEvent bool `protobuf:"varint,3,opt,name=mass_from_event,json=massFromEvent,proto3" json:"mass_from_event,omitempty"`
+	// One photon cluster stands for the product, such as a pi0 whose photons are
+	// too close to be told apart. The product must be neutral and must not decay in
+	// the reaction; it is measured in full.
+	MergedPhotons *MergedPhotons `protobuf:"bytes,4,opt,name=merged_photons,json=mergedPhotons,proto3" json:"merged_photons,omitempty"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
 }
@@ -603,6 +628,61 @@ func (x *ProductMeasurement) GetMassFromEvent() bool {
 	return false
 }
 
+func (x *ProductMeasurement) GetMergedPhotons() *MergedPhotons {
+	if x != nil {
+		return x.MergedPhotons
+	}
+	return nil
+}
+
+// MergedPhotons says that one photon cluster stands for a product that decays to
+// photons. The energy and direction are those of the cluster, the mass is that
+// of the product, so that its momentum is sqrt(E^2 - m^2).
+type MergedPhotons struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// Least energy of the cluster, included; greater than the mass of the product.
+	MinEnergyGev  float64 `protobuf:"fixed64,1,opt,name=min_energy_gev,json=minEnergyGev,proto3" json:"min_energy_gev,omitempty"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
+}
+
+func (x *MergedPhotons) Reset() {
+	*x = MergedPhotons{}
+	mi := &file_kinegate_v1_selection_proto_msgTypes[4]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *MergedPhotons) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*MergedPhotons) ProtoMessage() {}
+
+func (x *MergedPhotons) ProtoReflect() protoreflect.Message {
+	mi := &file_kinegate_v1_selection_proto_msgTypes[4]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use MergedPhotons.ProtoReflect.Descriptor instead.
+func (*MergedPhotons) Descriptor() ([]byte, []int) {
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{4}
+}
+
+func (x *MergedPhotons) GetMinEnergyGev() float64 {
+	if x != nil {
+		return x.MinEnergyGev
+	}
+	return 0
+}
+
 // BeamSource says where the energy of the initial state comes from.
 type BeamSource struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
@@ -619,7 +699,7 @@ type BeamSource struct {
 
 func (x *BeamSource) Reset() {
 	*x = BeamSource{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[4]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[5]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -631,7 +711,7 @@ func (x *BeamSource) String() string {
 func (*BeamSource) ProtoMessage() {}
 
 func (x *BeamSource) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[4]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[5]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -644,7 +724,7 @@ func (x *BeamSource) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use BeamSource.ProtoReflect.Descriptor instead.
 func (*BeamSource) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{4}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{5}
 }
 
 func (x *BeamSource) GetSource() isBeamSource_Source {
@@ -705,7 +785,7 @@ type TaggedBeam struct {
 
 func (x *TaggedBeam) Reset() {
 	*x = TaggedBeam{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[5]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[6]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -717,7 +797,7 @@ func (x *TaggedBeam) String() string {
 func (*TaggedBeam) ProtoMessage() {}
 
 func (x *TaggedBeam) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[5]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[6]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -730,7 +810,7 @@ func (x *TaggedBeam) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use TaggedBeam.ProtoReflect.Descriptor instead.
 func (*TaggedBeam) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{5}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{6}
 }
 
 func (x *TaggedBeam) GetPrompt() *TimeWindow {
@@ -762,7 +842,7 @@ type TimeWindow struct {
 
 func (x *TimeWindow) Reset() {
 	*x = TimeWindow{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[6]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[7]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -774,7 +854,7 @@ func (x *TimeWindow) String() string {
 func (*TimeWindow) ProtoMessage() {}
 
 func (x *TimeWindow) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[6]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[7]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -787,7 +867,7 @@ func (x *TimeWindow) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use TimeWindow.ProtoReflect.Descriptor instead.
 func (*TimeWindow) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{6}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{7}
 }
 
 func (x *TimeWindow) GetMinNs() float64 {
@@ -828,7 +908,7 @@ type ExtraObjects struct {
 
 func (x *ExtraObjects) Reset() {
 	*x = ExtraObjects{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[7]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[8]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -840,7 +920,7 @@ func (x *ExtraObjects) String() string {
 func (*ExtraObjects) ProtoMessage() {}
 
 func (x *ExtraObjects) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[7]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[8]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -853,7 +933,7 @@ func (x *ExtraObjects) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use ExtraObjects.ProtoReflect.Descriptor instead.
 func (*ExtraObjects) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{7}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{8}
 }
 
 func (x *ExtraObjects) GetRule() isExtraObjects_Rule {
@@ -924,7 +1004,7 @@ type NoExtraObjects struct {
 
 func (x *NoExtraObjects) Reset() {
 	*x = NoExtraObjects{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[8]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[9]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -936,7 +1016,7 @@ func (x *NoExtraObjects) String() string {
 func (*NoExtraObjects) ProtoMessage() {}
 
 func (x *NoExtraObjects) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[8]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[9]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -949,7 +1029,7 @@ func (x *NoExtraObjects) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use NoExtraObjects.ProtoReflect.Descriptor instead.
 func (*NoExtraObjects) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{8}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{9}
 }
 
 // AnyExtraObjects allows any.
@@ -961,7 +1041,7 @@ type AnyExtraObjects struct {
 
 func (x *AnyExtraObjects) Reset() {
 	*x = AnyExtraObjects{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[9]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[10]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -973,7 +1053,7 @@ func (x *AnyExtraObjects) String() string {
 func (*AnyExtraObjects) ProtoMessage() {}
 
 func (x *AnyExtraObjects) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[9]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[10]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -986,7 +1066,7 @@ func (x *AnyExtraObjects) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use AnyExtraObjects.ProtoReflect.Descriptor instead.
 func (*AnyExtraObjects) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{9}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{10}
 }
 
 // SoftPhotons allows a number of photons below an energy.
@@ -1002,7 +1082,7 @@ type SoftPhotons struct {
 
 func (x *SoftPhotons) Reset() {
 	*x = SoftPhotons{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[10]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[11]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -1014,7 +1094,7 @@ func (x *SoftPhotons) String() string {
 func (*SoftPhotons) ProtoMessage() {}
 
 func (x *SoftPhotons) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[10]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[11]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -1027,7 +1107,7 @@ func (x *SoftPhotons) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use SoftPhotons.ProtoReflect.Descriptor instead.
 func (*SoftPhotons) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{10}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{11}
 }
 
 func (x *SoftPhotons) GetMaxCount() int32 {
@@ -1061,7 +1141,7 @@ type Condition struct {
 
 func (x *Condition) Reset() {
 	*x = Condition{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[11]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[12]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -1073,7 +1153,7 @@ func (x *Condition) String() string {
 func (*Condition) ProtoMessage() {}
 
 func (x *Condition) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[11]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[12]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -1086,7 +1166,7 @@ func (x *Condition) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use Condition.ProtoReflect.Descriptor instead.
 func (*Condition) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{11}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{12}
 }
 
 func (x *Condition) GetWindow() *Window {
@@ -1144,6 +1224,9 @@ type Window struct {
 	//	*Window_TimeDifference
 	//	*Window_UnusedPhotonEnergy
 	//	*Window_VertexZ
+	//	*Window_FlightDistance
+	//	*Window_Pointing
+	//	*Window_FitProbability
 	Observable    isWindow_Observable `protobuf_oneof:"observable"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
@@ -1151,7 +1234,7 @@ type Window struct {
 
 func (x *Window) Reset() {
 	*x = Window{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[12]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[13]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -1163,7 +1246,7 @@ func (x *Window) String() string {
 func (*Window) ProtoMessage() {}
 
 func (x *Window) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[12]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[13]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -1176,7 +1259,7 @@ func (x *Window) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use Window.ProtoReflect.Descriptor instead.
 func (*Window) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{12}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{13}
 }
 
 func (x *Window) GetName() string {
@@ -1337,6 +1420,33 @@ func (x *Window) GetVertexZ() *VertexZWindow {
 	return nil
 }
 
+func (x *Window) GetFlightDistance() *FlightDistanceWindow {
+	if x != nil {
+		if x, ok := x.Observable.(*Window_FlightDistance); ok {
+			return x.FlightDistance
+		}
+	}
+	return nil
+}
+
+func (x *Window) GetPointing() *PointingWindow {
+	if x != nil {
+		if x, ok := x.Observable.(*Window_Pointing); ok {
+			return x.Pointing
+		}
+	}
+	return nil
+}
+
+func (x *Window) GetFitProbability() *FitProbabilityWindow {
+	if x != nil {
+		if x, ok := x.Observable.(*Window_FitProbability); ok {
+			return x.FitProbability
+		}
+	}
+	return nil
+}
+
 type isWindow_Observable interface {
 	isWindow_Observable()
 }
@@ -1422,6 +1532,22 @@ type Window_VertexZ struct {
 	VertexZ *VertexZWindow `protobuf:"bytes,17,opt,name=vertex_z,json=vertexZ,proto3,oneof"`
 }
 
+type Window_FlightDistance struct {
+	// Distance from the event vertex to the vertex group of a product.
+	FlightDistance *FlightDistanceWindow `protobuf:"bytes,18,opt,name=flight_distance,json=flightDistance,proto3,oneof"`
+}
+
+type Window_Pointing struct {
+	// Angle between the momentum of a product and its flight from the event
+	// vertex to its vertex group.
+	Pointing *PointingWindow `protobuf:"bytes,19,opt,name=pointing,proto3,oneof"`
+}
+
+type Window_FitProbability struct {
+	// Probability of a chi-square above that of the fit.
+	FitProbability *FitProbabilityWindow `protobuf:"bytes,20,opt,name=fit_probability,json=fitProbability,proto3,oneof"`
+}
+
 func (*Window_InvariantMass) isWindow_Observable() {}
 
 func (*Window_InvariantMassSquared) isWindow_Observable() {}
@@ -1454,6 +1580,12 @@ func (*Window_UnusedPhotonEnergy) isWindow_Observable() {}
 
 func (*Window_VertexZ) isWindow_Observable() {}
 
+func (*Window_FlightDistance) isWindow_Observable() {}
+
+func (*Window_Pointing) isWindow_Observable() {}
+
+func (*Window_FitProbability) isWindow_Observable() {}
+
 // MassWindow is a window on a mass.
 type MassWindow struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
@@ -1469,7 +1601,7 @@ type MassWindow struct {
 
 func (x *MassWindow) Reset() {
 	*x = MassWindow{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[13]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[14]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -1481,7 +1613,7 @@ func (x *MassWindow) String() string {
 func (*MassWindow) ProtoMessage() {}
 
 func (x *MassWindow) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[13]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[14]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -1494,7 +1626,7 @@ func (x *MassWindow) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use MassWindow.ProtoReflect.Descriptor instead.
 func (*MassWindow) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{13}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{14}
 }
 
 func (x *MassWindow) GetProducts() []string {
@@ -1533,7 +1665,7 @@ type MassSquaredWindow struct {
 
 func (x *MassSquaredWindow) Reset() {
 	*x = MassSquaredWindow{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[14]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[15]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -1545,7 +1677,7 @@ func (x *MassSquaredWindow) String() string {
 func (*MassSquaredWindow) ProtoMessage() {}
 
 func (x *MassSquaredWindow) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[14]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[15]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -1558,7 +1690,7 @@ func (x *MassSquaredWindow) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use MassSquaredWindow.ProtoReflect.Descriptor instead.
 func (*MassSquaredWindow) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{14}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{15}
 }
 
 func (x *MassSquaredWindow) GetProducts() []string {
@@ -1599,7 +1731,7 @@ type EnergyWindow struct {
 
 func (x *EnergyWindow) Reset() {
 	*x = EnergyWindow{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[15]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[16]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -1611,7 +1743,7 @@ func (x *EnergyWindow) String() string {
 func (*EnergyWindow) ProtoMessage() {}
 
 func (x *EnergyWindow) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[15]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[16]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -1624,7 +1756,7 @@ func (x *EnergyWindow) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use EnergyWindow.ProtoReflect.Descriptor instead.
 func (*EnergyWindow) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{15}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{16}
 }
 
 func (x *EnergyWindow) GetProducts() []string {
@@ -1672,7 +1804,7 @@ type AngleWindow struct {
 
 func (x *AngleWindow) Reset() {
 	*x = AngleWindow{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[16]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[17]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -1684,7 +1816,7 @@ func (x *AngleWindow) String() string {
 func (*AngleWindow) ProtoMessage() {}
 
 func (x *AngleWindow) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[16]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[17]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -1697,7 +1829,7 @@ func (x *AngleWindow) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use AngleWindow.ProtoReflect.Descriptor instead.
 func (*AngleWindow) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{16}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{17}
 }
 
 func (x *AngleWindow) GetProducts() []string {
@@ -1747,7 +1879,7 @@ type OpeningAngleWindow struct {
 
 func (x *OpeningAngleWindow) Reset() {
 	*x = OpeningAngleWindow{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[17]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[18]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -1759,7 +1891,7 @@ func (x *OpeningAngleWindow) String() string {
 func (*OpeningAngleWindow) ProtoMessage() {}
 
 func (x *OpeningAngleWindow) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[17]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[18]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -1772,7 +1904,7 @@ func (x *OpeningAngleWindow) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use OpeningAngleWindow.ProtoReflect.Descriptor instead.
 func (*OpeningAngleWindow) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{17}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{18}
 }
 
 func (x *OpeningAngleWindow) GetFirst() string {
@@ -1827,7 +1959,7 @@ type CoplanarityWindow struct {
 
 func (x *CoplanarityWindow) Reset() {
 	*x = CoplanarityWindow{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[18]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[19]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -1839,7 +1971,7 @@ func (x *CoplanarityWindow) String() string {
 func (*CoplanarityWindow) ProtoMessage() {}
 
 func (x *CoplanarityWindow) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[18]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[19]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -1852,7 +1984,7 @@ func (x *CoplanarityWindow) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use CoplanarityWindow.ProtoReflect.Descriptor instead.
 func (*CoplanarityWindow) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{18}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{19}
 }
 
 func (x *CoplanarityWindow) GetFirst() []string {
@@ -1899,7 +2031,7 @@ type MissingDirectionWindow struct {
 
 func (x *MissingDirectionWindow) Reset() {
 	*x = MissingDirectionWindow{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[19]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[20]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -1911,7 +2043,7 @@ func (x *MissingDirectionWindow) String() string {
 func (*MissingDirectionWindow) ProtoMessage() {}
 
 func (x *MissingDirectionWindow) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[19]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[20]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -1924,7 +2056,7 @@ func (x *MissingDirectionWindow) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use MissingDirectionWindow.ProtoReflect.Descriptor instead.
 func (*MissingDirectionWindow) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{19}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{20}
 }
 
 func (x *MissingDirectionWindow) GetProduct() string {
@@ -1965,7 +2097,7 @@ type MomentumTransferWindow struct {
 
 func (x *MomentumTransferWindow) Reset() {
 	*x = MomentumTransferWindow{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[20]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[21]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -1977,7 +2109,7 @@ func (x *MomentumTransferWindow) String() string {
 func (*MomentumTransferWindow) ProtoMessage() {}
 
 func (x *MomentumTransferWindow) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[20]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[21]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -1990,7 +2122,7 @@ func (x *MomentumTransferWindow) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use MomentumTransferWindow.ProtoReflect.Descriptor instead.
 func (*MomentumTransferWindow) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{20}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{21}
 }
 
 func (x *MomentumTransferWindow) GetInitial() InitialParticle {
@@ -2034,7 +2166,7 @@ type TimeDifferenceWindow struct {
 
 func (x *TimeDifferenceWindow) Reset() {
 	*x = TimeDifferenceWindow{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[21]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[22]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2046,7 +2178,7 @@ func (x *TimeDifferenceWindow) String() string {
 func (*TimeDifferenceWindow) ProtoMessage() {}
 
 func (x *TimeDifferenceWindow) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[21]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[22]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -2059,7 +2191,7 @@ func (x *TimeDifferenceWindow) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use TimeDifferenceWindow.ProtoReflect.Descriptor instead.
 func (*TimeDifferenceWindow) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{21}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{22}
 }
 
 func (x *TimeDifferenceWindow) GetMinNs() float64 {
@@ -2089,7 +2221,7 @@ type UnusedPhotonEnergyWindow struct {
 
 func (x *UnusedPhotonEnergyWindow) Reset() {
 	*x = UnusedPhotonEnergyWindow{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[22]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[23]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2101,7 +2233,7 @@ func (x *UnusedPhotonEnergyWindow) String() string {
 func (*UnusedPhotonEnergyWindow) ProtoMessage() {}
 
 func (x *UnusedPhotonEnergyWindow) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[22]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[23]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -2114,7 +2246,7 @@ func (x *UnusedPhotonEnergyWindow) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use UnusedPhotonEnergyWindow.ProtoReflect.Descriptor instead.
 func (*UnusedPhotonEnergyWindow) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{22}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{23}
 }
 
 func (x *UnusedPhotonEnergyWindow) GetMinGev() float64 {
@@ -2144,7 +2276,7 @@ type VertexZWindow struct {
 
 func (x *VertexZWindow) Reset() {
 	*x = VertexZWindow{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[23]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[24]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2156,7 +2288,7 @@ func (x *VertexZWindow) String() string {
 func (*VertexZWindow) ProtoMessage() {}
 
 func (x *VertexZWindow) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[23]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[24]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -2169,7 +2301,7 @@ func (x *VertexZWindow) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use VertexZWindow.ProtoReflect.Descriptor instead.
 func (*VertexZWindow) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{23}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{24}
 }
 
 func (x *VertexZWindow) GetMinM() float64 {
@@ -2186,6 +2318,197 @@ func (x *VertexZWindow) GetMaxM() float64 {
 	return 0
 }
 
+// FlightDistanceWindow is a window on the distance from the event vertex to the
+// vertex group of the objects that a product decays to, at least 0. It cannot be
+// computed where they belong to different groups; it is 0 where they all belong
+// to the event vertex.
+type FlightDistanceWindow struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// Reference of the product, which must decay in the reaction.
+	Product string `protobuf:"bytes,1,opt,name=product,proto3" json:"product,omitempty"`
+	// Lower limit, included.
+	MinM *float64 `protobuf:"fixed64,2,opt,name=min_m,json=minM,proto3,oneof" json:"min_m,omitempty"`
+	// Upper limit, not included.
+	MaxM          *float64 `protobuf:"fixed64,3,opt,name=max_m,json=maxM,proto3,oneof" json:"max_m,omitempty"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
+}
+
+func (x *FlightDistanceWindow) Reset() {
+	*x = FlightDistanceWindow{}
+	mi := &file_kinegate_v1_selection_proto_msgTypes[25]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *FlightDistanceWindow) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*FlightDistanceWindow) ProtoMessage() {}
+
+func (x *FlightDistanceWindow) ProtoReflect() protoreflect.Message {
+	mi := &file_kinegate_v1_selection_proto_msgTypes[25]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use FlightDistanceWindow.ProtoReflect.Descriptor instead.
+func (*FlightDistanceWindow) Descriptor() ([]byte, []int) {
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{25}
+}
+
+func (x *FlightDistanceWindow) GetProduct() string {
+	if x != nil {
+		return x.Product
+	}
+	return ""
+}
+
+func (x *FlightDistanceWindow) GetMinM() float64 {
+	if x != nil && x.MinM != nil {
+		return *x.MinM
+	}
+	return 0
+}
+
+func (x *FlightDistanceWindow) GetMaxM() float64 {
+	if x != nil && x.MaxM != nil {
+		return *x.MaxM
+	}
+	return 0
+}
+
+// PointingWindow is a window on the angle between the momentum of a product and
+// its flight from the event vertex to its vertex group, within [0, pi]. It
+// cannot be computed where the flight distance is 0 or cannot be computed.
+type PointingWindow struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// Reference of the product, which must decay in the reaction.
+	Product string `protobuf:"bytes,1,opt,name=product,proto3" json:"product,omitempty"`
+	// Lower limit, included.
+	MinRad *float64 `protobuf:"fixed64,2,opt,name=min_rad,json=minRad,proto3,oneof" json:"min_rad,omitempty"`
+	// Upper limit, not included.
+	MaxRad        *float64 `protobuf:"fixed64,3,opt,name=max_rad,json=maxRad,proto3,oneof" json:"max_rad,omitempty"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
+}
+
+func (x *PointingWindow) Reset() {
+	*x = PointingWindow{}
+	mi := &file_kinegate_v1_selection_proto_msgTypes[26]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *PointingWindow) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*PointingWindow) ProtoMessage() {}
+
+func (x *PointingWindow) ProtoReflect() protoreflect.Message {
+	mi := &file_kinegate_v1_selection_proto_msgTypes[26]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use PointingWindow.ProtoReflect.Descriptor instead.
+func (*PointingWindow) Descriptor() ([]byte, []int) {
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{26}
+}
+
+func (x *PointingWindow) GetProduct() string {
+	if x != nil {
+		return x.Product
+	}
+	return ""
+}
+
+func (x *PointingWindow) GetMinRad() float64 {
+	if x != nil && x.MinRad != nil {
+		return *x.MinRad
+	}
+	return 0
+}
+
+func (x *PointingWindow) GetMaxRad() float64 {
+	if x != nil && x.MaxRad != nil {
+		return *x.MaxRad
+	}
+	return 0
+}
+
+// FitProbabilityWindow is a window on the probability of a chi-square above that
+// of the fit, within [0, 1]. The hypothesis must have a fit with at least one
+// degree of freedom. A part of the condition that holds this window is evaluated
+// last.
+type FitProbabilityWindow struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// Lower limit, included.
+	Min *float64 `protobuf:"fixed64,1,opt,name=min,proto3,oneof" json:"min,omitempty"`
+	// Upper limit, not included.
+	Max           *float64 `protobuf:"fixed64,2,opt,name=max,proto3,oneof" json:"max,omitempty"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
+}
+
+func (x *FitProbabilityWindow) Reset() {
+	*x = FitProbabilityWindow{}
+	mi := &file_kinegate_v1_selection_proto_msgTypes[27]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *FitProbabilityWindow) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*FitProbabilityWindow) ProtoMessage() {}
+
+func (x *FitProbabilityWindow) ProtoReflect() protoreflect.Message {
+	mi := &file_kinegate_v1_selection_proto_msgTypes[27]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use FitProbabilityWindow.ProtoReflect.Descriptor instead.
+func (*FitProbabilityWindow) Descriptor() ([]byte, []int) {
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{27}
+}
+
+func (x *FitProbabilityWindow) GetMin() float64 {
+	if x != nil && x.Min != nil {
+		return *x.Min
+	}
+	return 0
+}
+
+func (x *FitProbabilityWindow) GetMax() float64 {
+	if x != nil && x.Max != nil {
+		return *x.Max
+	}
+	return 0
+}
+
 // Ranking orders the assignments of one hypothesis; the first is its best.
 // Ties go to the lowest tuple of object indices.
 type Ranking struct {
@@ -2195,6 +2518,7 @@ type Ranking struct {
 	// Types that are valid to be assigned to Order:
 	//
 	//	*Ranking_ClosestMasses
+	//	*Ranking_FitProbability
 	Order         isRanking_Order `protobuf_oneof:"order"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
@@ -2202,7 +2526,7 @@ type Ranking struct {
 
 func (x *Ranking) Reset() {
 	*x = Ranking{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[24]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[28]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2214,7 +2538,7 @@ func (x *Ranking) String() string {
 func (*Ranking) ProtoMessage() {}
 
 func (x *Ranking) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[24]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[28]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -2227,7 +2551,7 @@ func (x *Ranking) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use Ranking.ProtoReflect.Descriptor instead.
 func (*Ranking) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{24}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{28}
 }
 
 func (x *Ranking) GetOrder() isRanking_Order {
@@ -2246,6 +2570,15 @@ func (x *Ranking) GetClosestMasses() *ClosestMasses {
 	return nil
 }
 
+func (x *Ranking) GetFitProbability() *RankByFitProbability {
+	if x != nil {
+		if x, ok := x.Order.(*Ranking_FitProbability); ok {
+			return x.FitProbability
+		}
+	}
+	return nil
+}
+
 type isRanking_Order interface {
 	isRanking_Order()
 }
@@ -2255,7 +2588,52 @@ type Ranking_ClosestMasses struct {
 	ClosestMasses *ClosestMasses `protobuf:"bytes,1,opt,name=closest_masses,json=closestMasses,proto3,oneof"`
 }
 
+type Ranking_FitProbability struct {
+	// The largest fit probability first; the hypothesis must have a fit with at
+	// least one degree of freedom.
+	FitProbability *RankByFitProbability `protobuf:"bytes,2,opt,name=fit_probability,json=fitProbability,proto3,oneof"`
+}
+
 func (*Ranking_ClosestMasses) isRanking_Order() {}
+
+func (*Ranking_FitProbability) isRanking_Order() {}
+
+// RankByFitProbability ranks by fit probability.
+type RankByFitProbability struct {
+	state         protoimpl.MessageState `protogen:"open.v1"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
+}
+
+func (x *RankByFitProbability) Reset() {
+	*x = RankByFitProbability{}
+	mi := &file_kinegate_v1_selection_proto_msgTypes[29]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *RankByFitProbability) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*RankByFitProbability) ProtoMessage() {}
+
+func (x *RankByFitProbability) ProtoReflect() protoreflect.Message {
+	mi := &file_kinegate_v1_selection_proto_msgTypes[29]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use RankByFitProbability.ProtoReflect.Descriptor instead.
+func (*RankByFitProbability) Descriptor() ([]byte, []int) {
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{29}
+}
 
 // ClosestMasses ranks by the sum of squared distances between masses.
 type ClosestMasses struct {
@@ -2268,7 +2646,7 @@ type ClosestMasses struct {
 
 func (x *ClosestMasses) Reset() {
 	*x = ClosestMasses{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[25]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[30]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2280,7 +2658,7 @@ func (x *ClosestMasses) String() string {
 func (*ClosestMasses) ProtoMessage() {}
 
 func (x *ClosestMasses) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[25]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[30]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -2293,7 +2671,7 @@ func (x *ClosestMasses) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use ClosestMasses.ProtoReflect.Descriptor instead.
 func (*ClosestMasses) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{25}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{30}
 }
 
 func (x *ClosestMasses) GetMasses() []*MassReference {
@@ -2318,7 +2696,7 @@ type MassReference struct {
 
 func (x *MassReference) Reset() {
 	*x = MassReference{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[26]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[31]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2330,7 +2708,7 @@ func (x *MassReference) String() string {
 func (*MassReference) ProtoMessage() {}
 
 func (x *MassReference) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[26]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[31]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -2343,7 +2721,7 @@ func (x *MassReference) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use MassReference.ProtoReflect.Descriptor instead.
 func (*MassReference) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{26}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{31}
 }
 
 func (x *MassReference) GetProducts() []string {
@@ -2383,7 +2761,7 @@ type CheckSelectionRequest struct {
 
 func (x *CheckSelectionRequest) Reset() {
 	*x = CheckSelectionRequest{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[27]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[32]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2395,7 +2773,7 @@ func (x *CheckSelectionRequest) String() string {
 func (*CheckSelectionRequest) ProtoMessage() {}
 
 func (x *CheckSelectionRequest) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[27]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[32]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -2408,7 +2786,7 @@ func (x *CheckSelectionRequest) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use CheckSelectionRequest.ProtoReflect.Descriptor instead.
 func (*CheckSelectionRequest) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{27}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{32}
 }
 
 func (x *CheckSelectionRequest) GetForm() isCheckSelectionRequest_Form {
@@ -2475,7 +2853,7 @@ type CheckSelectionResponse struct {
 
 func (x *CheckSelectionResponse) Reset() {
 	*x = CheckSelectionResponse{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[28]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[33]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2487,7 +2865,7 @@ func (x *CheckSelectionResponse) String() string {
 func (*CheckSelectionResponse) ProtoMessage() {}
 
 func (x *CheckSelectionResponse) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[28]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[33]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -2500,7 +2878,7 @@ func (x *CheckSelectionResponse) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use CheckSelectionResponse.ProtoReflect.Descriptor instead.
 func (*CheckSelectionResponse) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{28}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{33}
 }
 
 func (x *CheckSelectionResponse) GetFaults() []*FieldFault {
@@ -2549,14 +2927,16 @@ type HypothesisOutline struct {
 	// assignment.
 	Products []string `protobuf:"bytes,3,rep,name=products,proto3" json:"products,omitempty"`
 	// Labels of the recorded observables: the meaning of an entry's observables.
-	Observables   []string `protobuf:"bytes,4,rep,name=observables,proto3" json:"observables,omitempty"`
-	unknownFields protoimpl.UnknownFields
-	sizeCache     protoimpl.SizeCache
+	Observables []string `protobuf:"bytes,4,rep,name=observables,proto3" json:"observables,omitempty"`
+	// Degrees of freedom of the fit; absent without a fit.
+	DegreesOfFreedom *int32 `protobuf:"varint,5,opt,name=degrees_of_freedom,json=degreesOfFreedom,proto3,oneof" json:"degrees_of_freedom,omitempty"`
+	unknownFields    protoimpl.UnknownFields
+	sizeCache        protoimpl.SizeCache
 }
 
 func (x *HypothesisOutline) Reset() {
 	*x = HypothesisOutline{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[29]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[34]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2568,7 +2948,7 @@ func (x *HypothesisOutline) String() string {
 func (*HypothesisOutline) ProtoMessage() {}
 
 func (x *HypothesisOutline) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[29]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[34]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -2581,7 +2961,7 @@ func (x *HypothesisOutline) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use HypothesisOutline.ProtoReflect.Descriptor instead.
 func (*HypothesisOutline) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{29}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{34}
 }
 
 func (x *HypothesisOutline) GetName() string {
@@ -2612,6 +2992,13 @@ func (x *HypothesisOutline) GetObservables() []string {
 	return nil
 }
 
+func (x *HypothesisOutline) GetDegreesOfFreedom() int32 {
+	if x != nil && x.DegreesOfFreedom != nil {
+		return *x.DegreesOfFreedom
+	}
+	return 0
+}
+
 // JudgeBlockRequest is one block to judge.
 type JudgeBlockRequest struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
@@ -2627,7 +3014,7 @@ type JudgeBlockRequest struct {
 
 func (x *JudgeBlockRequest) Reset() {
 	*x = JudgeBlockRequest{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[30]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[35]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2639,7 +3026,7 @@ func (x *JudgeBlockRequest) String() string {
 func (*JudgeBlockRequest) ProtoMessage() {}
 
 func (x *JudgeBlockRequest) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[30]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[35]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -2652,7 +3039,7 @@ func (x *JudgeBlockRequest) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use JudgeBlockRequest.ProtoReflect.Descriptor instead.
 func (*JudgeBlockRequest) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{30}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{35}
 }
 
 func (x *JudgeBlockRequest) GetSelection() *SelectionSource {
@@ -2687,7 +3074,7 @@ type JudgeBlockResponse struct {
 
 func (x *JudgeBlockResponse) Reset() {
 	*x = JudgeBlockResponse{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[31]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[36]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2699,7 +3086,7 @@ func (x *JudgeBlockResponse) String() string {
 func (*JudgeBlockResponse) ProtoMessage() {}
 
 func (x *JudgeBlockResponse) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[31]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[36]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -2712,7 +3099,7 @@ func (x *JudgeBlockResponse) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use JudgeBlockResponse.ProtoReflect.Descriptor instead.
 func (*JudgeBlockResponse) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{31}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{36}
 }
 
 func (x *JudgeBlockResponse) GetVerdict() *VerdictBlock {
@@ -2720,6 +3107,79 @@ func (x *JudgeBlockResponse) GetVerdict() *VerdictBlock {
 		return x.Verdict
 	}
 	return nil
+}
+
+// ExplainVerdictRequest asks why one event was judged as it was.
+type ExplainVerdictRequest struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// What to judge with.
+	Selection *SelectionSource `protobuf:"bytes,1,opt,name=selection,proto3" json:"selection,omitempty"`
+	// Events, of which one is explained.
+	Block *EventBlock `protobuf:"bytes,2,opt,name=block,proto3" json:"block,omitempty"`
+	// Position of that event in the block, from 0.
+	EventIndex int32 `protobuf:"varint,3,opt,name=event_index,json=eventIndex,proto3" json:"event_index,omitempty"`
+	// Most assignments to list for a hypothesis, at most 1,000; 0 means 100.
+	MaxAssignmentCount int32 `protobuf:"varint,4,opt,name=max_assignment_count,json=maxAssignmentCount,proto3" json:"max_assignment_count,omitempty"`
+	unknownFields      protoimpl.UnknownFields
+	sizeCache          protoimpl.SizeCache
+}
+
+func (x *ExplainVerdictRequest) Reset() {
+	*x = ExplainVerdictRequest{}
+	mi := &file_kinegate_v1_selection_proto_msgTypes[37]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *ExplainVerdictRequest) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*ExplainVerdictRequest) ProtoMessage() {}
+
+func (x *ExplainVerdictRequest) ProtoReflect() protoreflect.Message {
+	mi := &file_kinegate_v1_selection_proto_msgTypes[37]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use ExplainVerdictRequest.ProtoReflect.Descriptor instead.
+func (*ExplainVerdictRequest) Descriptor() ([]byte, []int) {
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{37}
+}
+
+func (x *ExplainVerdictRequest) GetSelection() *SelectionSource {
+	if x != nil {
+		return x.Selection
+	}
+	return nil
+}
+
+func (x *ExplainVerdictRequest) GetBlock() *EventBlock {
+	if x != nil {
+		return x.Block
+	}
+	return nil
+}
+
+func (x *ExplainVerdictRequest) GetEventIndex() int32 {
+	if x != nil {
+		return x.EventIndex
+	}
+	return 0
+}
+
+func (x *ExplainVerdictRequest) GetMaxAssignmentCount() int32 {
+	if x != nil {
+		return x.MaxAssignmentCount
+	}
+	return 0
 }
 
 // SelectionSource says which selection to judge with.
@@ -2738,7 +3198,7 @@ type SelectionSource struct {
 
 func (x *SelectionSource) Reset() {
 	*x = SelectionSource{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[32]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[38]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2750,7 +3210,7 @@ func (x *SelectionSource) String() string {
 func (*SelectionSource) ProtoMessage() {}
 
 func (x *SelectionSource) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[32]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[38]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -2763,7 +3223,7 @@ func (x *SelectionSource) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use SelectionSource.ProtoReflect.Descriptor instead.
 func (*SelectionSource) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{32}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{38}
 }
 
 func (x *SelectionSource) GetSource() isSelectionSource_Source {
@@ -2822,7 +3282,7 @@ type SelectionReference struct {
 
 func (x *SelectionReference) Reset() {
 	*x = SelectionReference{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[33]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[39]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2834,7 +3294,7 @@ func (x *SelectionReference) String() string {
 func (*SelectionReference) ProtoMessage() {}
 
 func (x *SelectionReference) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[33]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[39]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -2847,7 +3307,7 @@ func (x *SelectionReference) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use SelectionReference.ProtoReflect.Descriptor instead.
 func (*SelectionReference) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{33}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{39}
 }
 
 func (x *SelectionReference) GetName() string {
@@ -2881,7 +3341,7 @@ type JudgeRequest struct {
 
 func (x *JudgeRequest) Reset() {
 	*x = JudgeRequest{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[34]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[40]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2893,7 +3353,7 @@ func (x *JudgeRequest) String() string {
 func (*JudgeRequest) ProtoMessage() {}
 
 func (x *JudgeRequest) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[34]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[40]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -2906,7 +3366,7 @@ func (x *JudgeRequest) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use JudgeRequest.ProtoReflect.Descriptor instead.
 func (*JudgeRequest) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{34}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{40}
 }
 
 func (x *JudgeRequest) GetFrame() isJudgeRequest_Frame {
@@ -2986,7 +3446,7 @@ type JudgeResponse struct {
 
 func (x *JudgeResponse) Reset() {
 	*x = JudgeResponse{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[35]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[41]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2998,7 +3458,7 @@ func (x *JudgeResponse) String() string {
 func (*JudgeResponse) ProtoMessage() {}
 
 func (x *JudgeResponse) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[35]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[41]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -3011,7 +3471,7 @@ func (x *JudgeResponse) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use JudgeResponse.ProtoReflect.Descriptor instead.
 func (*JudgeResponse) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{35}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{41}
 }
 
 func (x *JudgeResponse) GetFrame() isJudgeResponse_Frame {
@@ -3116,7 +3576,7 @@ type JudgeOpen struct {
 
 func (x *JudgeOpen) Reset() {
 	*x = JudgeOpen{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[36]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[42]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -3128,7 +3588,7 @@ func (x *JudgeOpen) String() string {
 func (*JudgeOpen) ProtoMessage() {}
 
 func (x *JudgeOpen) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[36]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[42]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -3141,7 +3601,7 @@ func (x *JudgeOpen) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use JudgeOpen.ProtoReflect.Descriptor instead.
 func (*JudgeOpen) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{36}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{42}
 }
 
 func (x *JudgeOpen) GetSelection() *SelectionSource {
@@ -3203,7 +3663,7 @@ type JudgeOpened struct {
 
 func (x *JudgeOpened) Reset() {
 	*x = JudgeOpened{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[37]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[43]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -3215,7 +3675,7 @@ func (x *JudgeOpened) String() string {
 func (*JudgeOpened) ProtoMessage() {}
 
 func (x *JudgeOpened) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[37]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[43]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -3228,7 +3688,7 @@ func (x *JudgeOpened) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use JudgeOpened.ProtoReflect.Descriptor instead.
 func (*JudgeOpened) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{37}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{43}
 }
 
 func (x *JudgeOpened) GetSelectionDigest() string {
@@ -3273,7 +3733,7 @@ type Credit struct {
 
 func (x *Credit) Reset() {
 	*x = Credit{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[38]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[44]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -3285,7 +3745,7 @@ func (x *Credit) String() string {
 func (*Credit) ProtoMessage() {}
 
 func (x *Credit) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[38]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[44]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -3298,7 +3758,7 @@ func (x *Credit) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use Credit.ProtoReflect.Descriptor instead.
 func (*Credit) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{38}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{44}
 }
 
 func (x *Credit) GetBlockCount() int64 {
@@ -3331,7 +3791,7 @@ type Heartbeat struct {
 
 func (x *Heartbeat) Reset() {
 	*x = Heartbeat{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[39]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[45]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -3343,7 +3803,7 @@ func (x *Heartbeat) String() string {
 func (*Heartbeat) ProtoMessage() {}
 
 func (x *Heartbeat) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[39]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[45]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -3356,7 +3816,7 @@ func (x *Heartbeat) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use Heartbeat.ProtoReflect.Descriptor instead.
 func (*Heartbeat) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{39}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{45}
 }
 
 func (x *Heartbeat) GetReceivedSequence() int64 {
@@ -3394,7 +3854,7 @@ type Draining struct {
 
 func (x *Draining) Reset() {
 	*x = Draining{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[40]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[46]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -3406,7 +3866,7 @@ func (x *Draining) String() string {
 func (*Draining) ProtoMessage() {}
 
 func (x *Draining) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[40]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[46]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -3419,7 +3879,7 @@ func (x *Draining) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use Draining.ProtoReflect.Descriptor instead.
 func (*Draining) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{40}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{46}
 }
 
 func (x *Draining) GetAnsweredSequence() int64 {
@@ -3440,7 +3900,7 @@ var File_kinegate_v1_selection_proto protoreflect.FileDescriptor
 
 const file_kinegate_v1_selection_proto_rawDesc = "" +
 	"\n" +
-	"\x1bkinegate/v1/selection.proto\x12\vkinegate.v1\x1a\x17kinegate/v1/event.proto\x1a\x17kinegate/v1/fault.proto\x1a\x16kinegate/v1/info.proto\x1a\x1ckinegate/v1/kinematics.proto\x1a\x1akinegate/v1/reaction.proto\x1a\x19kinegate/v1/verdict.proto\"\xde\x01\n" +
+	"\x1bkinegate/v1/selection.proto\x12\vkinegate.v1\x1a\x17kinegate/v1/event.proto\x1a\x1dkinegate/v1/explanation.proto\x1a\x17kinegate/v1/fault.proto\x1a\x15kinegate/v1/fit.proto\x1a\x16kinegate/v1/info.proto\x1a\x1ckinegate/v1/kinematics.proto\x1a\x1akinegate/v1/reaction.proto\x1a\x19kinegate/v1/verdict.proto\"\xde\x01\n" +
 	"\tSelection\x12\x12\n" +
 	"\x04name\x18\x01 \x01(\tR\x04name\x12 \n" +
 	"\vdescription\x18\x02 \x01(\tR\vdescription\x127\n" +
@@ -3448,7 +3908,7 @@ const file_kinegate_v1_selection_proto_rawDesc = "" +
 	"hypotheses\x18\x03 \x03(\v2\x17.kinegate.v1.HypothesisR\n" +
 	"hypotheses\x12*\n" +
 	"\x06groups\x18\x04 \x03(\v2\x12.kinegate.v1.GroupR\x06groups\x126\n" +
-	"\x17assignment_budget_count\x18\x05 \x01(\x03R\x15assignmentBudgetCount\"\xbe\x04\n" +
+	"\x17assignment_budget_count\x18\x05 \x01(\x03R\x15assignmentBudgetCount\"\x95\x05\n" +
 	"\n" +
 	"Hypothesis\x12\x12\n" +
 	"\x04name\x18\x01 \x01(\tR\x04name\x12\x1a\n" +
@@ -3463,16 +3923,21 @@ const file_kinegate_v1_selection_proto_rawDesc = "" +
 	"\x06record\x18\n" +
 	" \x03(\v2\x13.kinegate.v1.WindowR\x06record\x12%\n" +
 	"\x0eprescale_count\x18\v \x01(\x03R\rprescaleCount\x12%\n" +
-	"\x04role\x18\f \x01(\x0e2\x11.kinegate.v1.RoleR\x04role\";\n" +
+	"\x04role\x18\f \x01(\x0e2\x11.kinegate.v1.RoleR\x04role\x12\"\n" +
+	"\x03fit\x18\r \x01(\v2\x10.kinegate.v1.FitR\x03fit\x121\n" +
+	"\x14record_uncertainties\x18\x0e \x01(\bR\x13recordUncertainties\";\n" +
 	"\x05Group\x12\x12\n" +
 	"\x04name\x18\x01 \x01(\tR\x04name\x12\x1e\n" +
 	"\n" +
 	"hypotheses\x18\x02 \x03(\tR\n" +
-	"hypotheses\"\x92\x01\n" +
+	"hypotheses\"\xd5\x01\n" +
 	"\x12ProductMeasurement\x12\x18\n" +
 	"\aproduct\x18\x01 \x01(\tR\aproduct\x12:\n" +
 	"\vmeasurement\x18\x02 \x01(\x0e2\x18.kinegate.v1.MeasurementR\vmeasurement\x12&\n" +
-	"\x0fmass_from_event\x18\x03 \x01(\bR\rmassFromEvent\"|\n" +
+	"\x0fmass_from_event\x18\x03 \x01(\bR\rmassFromEvent\x12A\n" +
+	"\x0emerged_photons\x18\x04 \x01(\v2\x1a.kinegate.v1.MergedPhotonsR\rmergedPhotons\"5\n" +
+	"\rMergedPhotons\x12$\n" +
+	"\x0emin_energy_gev\x18\x01 \x01(\x01R\fminEnergyGev\"|\n" +
 	"\n" +
 	"BeamSource\x121\n" +
 	"\x06tagged\x18\x01 \x01(\v2\x17.kinegate.v1.TaggedBeamH\x00R\x06tagged\x121\n" +
@@ -3503,7 +3968,7 @@ const file_kinegate_v1_selection_proto_rawDesc = "" +
 	"\x06window\x18\x01 \x01(\v2\x13.kinegate.v1.WindowR\x06window\x12-\n" +
 	"\x06all_of\x18\x02 \x03(\v2\x16.kinegate.v1.ConditionR\x05allOf\x12-\n" +
 	"\x06any_of\x18\x03 \x03(\v2\x16.kinegate.v1.ConditionR\x05anyOf\x12(\n" +
-	"\x03not\x18\x04 \x01(\v2\x16.kinegate.v1.ConditionR\x03not\"\xb9\t\n" +
+	"\x03not\x18\x04 \x01(\v2\x16.kinegate.v1.ConditionR\x03not\"\x90\v\n" +
 	"\x06Window\x12\x12\n" +
 	"\x04name\x18\x01 \x01(\tR\x04name\x12@\n" +
 	"\x0einvariant_mass\x18\x02 \x01(\v2\x17.kinegate.v1.MassWindowH\x00R\rinvariantMass\x12V\n" +
@@ -3522,7 +3987,10 @@ const file_kinegate_v1_selection_proto_rawDesc = "" +
 	"\x17momentum_transfer_prime\x18\x0e \x01(\v2#.kinegate.v1.MomentumTransferWindowH\x00R\x15momentumTransferPrime\x12L\n" +
 	"\x0ftime_difference\x18\x0f \x01(\v2!.kinegate.v1.TimeDifferenceWindowH\x00R\x0etimeDifference\x12Y\n" +
 	"\x14unused_photon_energy\x18\x10 \x01(\v2%.kinegate.v1.UnusedPhotonEnergyWindowH\x00R\x12unusedPhotonEnergy\x127\n" +
-	"\bvertex_z\x18\x11 \x01(\v2\x1a.kinegate.v1.VertexZWindowH\x00R\avertexZB\f\n" +
+	"\bvertex_z\x18\x11 \x01(\v2\x1a.kinegate.v1.VertexZWindowH\x00R\avertexZ\x12L\n" +
+	"\x0fflight_distance\x18\x12 \x01(\v2!.kinegate.v1.FlightDistanceWindowH\x00R\x0eflightDistance\x129\n" +
+	"\bpointing\x18\x13 \x01(\v2\x1b.kinegate.v1.PointingWindowH\x00R\bpointing\x12L\n" +
+	"\x0ffit_probability\x18\x14 \x01(\v2!.kinegate.v1.FitProbabilityWindowH\x00R\x0efitProbabilityB\f\n" +
 	"\n" +
 	"observable\"|\n" +
 	"\n" +
@@ -3608,10 +4076,31 @@ const file_kinegate_v1_selection_proto_rawDesc = "" +
 	"\x05min_m\x18\x01 \x01(\x01H\x00R\x04minM\x88\x01\x01\x12\x18\n" +
 	"\x05max_m\x18\x02 \x01(\x01H\x01R\x04maxM\x88\x01\x01B\b\n" +
 	"\x06_min_mB\b\n" +
-	"\x06_max_m\"W\n" +
+	"\x06_max_m\"x\n" +
+	"\x14FlightDistanceWindow\x12\x18\n" +
+	"\aproduct\x18\x01 \x01(\tR\aproduct\x12\x18\n" +
+	"\x05min_m\x18\x02 \x01(\x01H\x00R\x04minM\x88\x01\x01\x12\x18\n" +
+	"\x05max_m\x18\x03 \x01(\x01H\x01R\x04maxM\x88\x01\x01B\b\n" +
+	"\x06_min_mB\b\n" +
+	"\x06_max_m\"~\n" +
+	"\x0ePointingWindow\x12\x18\n" +
+	"\aproduct\x18\x01 \x01(\tR\aproduct\x12\x1c\n" +
+	"\amin_rad\x18\x02 \x01(\x01H\x00R\x06minRad\x88\x01\x01\x12\x1c\n" +
+	"\amax_rad\x18\x03 \x01(\x01H\x01R\x06maxRad\x88\x01\x01B\n" +
+	"\n" +
+	"\b_min_radB\n" +
+	"\n" +
+	"\b_max_rad\"T\n" +
+	"\x14FitProbabilityWindow\x12\x15\n" +
+	"\x03min\x18\x01 \x01(\x01H\x00R\x03min\x88\x01\x01\x12\x15\n" +
+	"\x03max\x18\x02 \x01(\x01H\x01R\x03max\x88\x01\x01B\x06\n" +
+	"\x04_minB\x06\n" +
+	"\x04_max\"\xa5\x01\n" +
 	"\aRanking\x12C\n" +
-	"\x0eclosest_masses\x18\x01 \x01(\v2\x1a.kinegate.v1.ClosestMassesH\x00R\rclosestMassesB\a\n" +
-	"\x05order\"C\n" +
+	"\x0eclosest_masses\x18\x01 \x01(\v2\x1a.kinegate.v1.ClosestMassesH\x00R\rclosestMasses\x12L\n" +
+	"\x0ffit_probability\x18\x02 \x01(\v2!.kinegate.v1.RankByFitProbabilityH\x00R\x0efitProbabilityB\a\n" +
+	"\x05order\"\x16\n" +
+	"\x14RankByFitProbability\"C\n" +
 	"\rClosestMasses\x122\n" +
 	"\x06masses\x18\x01 \x03(\v2\x1a.kinegate.v1.MassReferenceR\x06masses\"\x88\x01\n" +
 	"\rMassReference\x12\x1a\n" +
@@ -3632,18 +4121,26 @@ const file_kinegate_v1_selection_proto_rawDesc = "" +
 	"\n" +
 	"hypotheses\x18\x04 \x03(\v2\x1e.kinegate.v1.HypothesisOutlineR\n" +
 	"hypotheses\x127\n" +
-	"\x18largest_reply_byte_count\x18\x05 \x01(\x03R\x15largestReplyByteCount\"\x81\x01\n" +
+	"\x18largest_reply_byte_count\x18\x05 \x01(\x03R\x15largestReplyByteCount\"\xcb\x01\n" +
 	"\x11HypothesisOutline\x12\x12\n" +
 	"\x04name\x18\x01 \x01(\tR\x04name\x12\x1a\n" +
 	"\breaction\x18\x02 \x01(\tR\breaction\x12\x1a\n" +
 	"\bproducts\x18\x03 \x03(\tR\bproducts\x12 \n" +
-	"\vobservables\x18\x04 \x03(\tR\vobservables\"\xb2\x01\n" +
+	"\vobservables\x18\x04 \x03(\tR\vobservables\x121\n" +
+	"\x12degrees_of_freedom\x18\x05 \x01(\x05H\x00R\x10degreesOfFreedom\x88\x01\x01B\x15\n" +
+	"\x13_degrees_of_freedom\"\xb2\x01\n" +
 	"\x11JudgeBlockRequest\x12:\n" +
 	"\tselection\x18\x01 \x01(\v2\x1c.kinegate.v1.SelectionSourceR\tselection\x122\n" +
 	"\aentries\x18\x02 \x01(\x0e2\x18.kinegate.v1.EntryDetailR\aentries\x12-\n" +
 	"\x05block\x18\x03 \x01(\v2\x17.kinegate.v1.EventBlockR\x05block\"I\n" +
 	"\x12JudgeBlockResponse\x123\n" +
-	"\averdict\x18\x01 \x01(\v2\x19.kinegate.v1.VerdictBlockR\averdict\"\x86\x01\n" +
+	"\averdict\x18\x01 \x01(\v2\x19.kinegate.v1.VerdictBlockR\averdict\"\xd5\x01\n" +
+	"\x15ExplainVerdictRequest\x12:\n" +
+	"\tselection\x18\x01 \x01(\v2\x1c.kinegate.v1.SelectionSourceR\tselection\x12-\n" +
+	"\x05block\x18\x02 \x01(\v2\x17.kinegate.v1.EventBlockR\x05block\x12\x1f\n" +
+	"\vevent_index\x18\x03 \x01(\x05R\n" +
+	"eventIndex\x120\n" +
+	"\x14max_assignment_count\x18\x04 \x01(\x05R\x12maxAssignmentCount\"\x86\x01\n" +
 	"\x0fSelectionSource\x120\n" +
 	"\x06inline\x18\x01 \x01(\v2\x16.kinegate.v1.SelectionH\x00R\x06inline\x127\n" +
 	"\x05named\x18\x02 \x01(\v2\x1f.kinegate.v1.SelectionReferenceH\x00R\x05namedB\b\n" +
@@ -3707,12 +4204,13 @@ const file_kinegate_v1_selection_proto_rawDesc = "" +
 	"\x18ENTRY_DETAIL_UNSPECIFIED\x10\x00\x12\x15\n" +
 	"\x11ENTRY_DETAIL_NONE\x10\x01\x12\x19\n" +
 	"\x15ENTRY_DETAIL_ACCEPTED\x10\x02\x12\x14\n" +
-	"\x10ENTRY_DETAIL_ALL\x10\x032\x80\x02\n" +
+	"\x10ENTRY_DETAIL_ALL\x10\x032\xdb\x02\n" +
 	"\x10SelectionService\x12Y\n" +
 	"\x0eCheckSelection\x12\".kinegate.v1.CheckSelectionRequest\x1a#.kinegate.v1.CheckSelectionResponse\x12M\n" +
 	"\n" +
 	"JudgeBlock\x12\x1e.kinegate.v1.JudgeBlockRequest\x1a\x1f.kinegate.v1.JudgeBlockResponse\x12B\n" +
-	"\x05Judge\x12\x19.kinegate.v1.JudgeRequest\x1a\x1a.kinegate.v1.JudgeResponse(\x010\x01B3Z1example.org/kinegate/proto/kinegate/v1;kinegatev1b\x06proto3"
+	"\x05Judge\x12\x19.kinegate.v1.JudgeRequest\x1a\x1a.kinegate.v1.JudgeResponse(\x010\x01\x12Y\n" +
+	"\x0eExplainVerdict\x12\".kinegate.v1.ExplainVerdictRequest\x1a#.kinegate.v1.ExplainVerdictResponseB3Z1example.org/kinegate/proto/kinegate/v1;kinegatev1b\x06proto3"
 
 var (
 	file_kinegate_v1_selection_proto_rawDescOnce sync.Once
@@ -3727,7 +4225,7 @@ func file_kinegate_v1_selection_proto_rawDescGZIP() []byte {
 }
 
 var file_kinegate_v1_selection_proto_enumTypes = make([]protoimpl.EnumInfo, 4)
-var file_kinegate_v1_selection_proto_msgTypes = make([]protoimpl.MessageInfo, 41)
+var file_kinegate_v1_selection_proto_msgTypes = make([]protoimpl.MessageInfo, 47)
 var file_kinegate_v1_selection_proto_goTypes = []any{
 	(Role)(0),                        // 0: kinegate.v1.Role
 	(Measurement)(0),                 // 1: kinegate.v1.Measurement
@@ -3737,130 +4235,148 @@ var file_kinegate_v1_selection_proto_goTypes = []any{
 	(*Hypothesis)(nil),               // 5: kinegate.v1.Hypothesis
 	(*Group)(nil),                    // 6: kinegate.v1.Group
 	(*ProductMeasurement)(nil),       // 7: kinegate.v1.ProductMeasurement
-	(*BeamSource)(nil),               // 8: kinegate.v1.BeamSource
-	(*TaggedBeam)(nil),               // 9: kinegate.v1.TaggedBeam
-	(*TimeWindow)(nil),               // 10: kinegate.v1.TimeWindow
-	(*ExtraObjects)(nil),             // 11: kinegate.v1.ExtraObjects
-	(*NoExtraObjects)(nil),           // 12: kinegate.v1.NoExtraObjects
-	(*AnyExtraObjects)(nil),          // 13: kinegate.v1.AnyExtraObjects
-	(*SoftPhotons)(nil),              // 14: kinegate.v1.SoftPhotons
-	(*Condition)(nil),                // 15: kinegate.v1.Condition
-	(*Window)(nil),                   // 16: kinegate.v1.Window
-	(*MassWindow)(nil),               // 17: kinegate.v1.MassWindow
-	(*MassSquaredWindow)(nil),        // 18: kinegate.v1.MassSquaredWindow
-	(*EnergyWindow)(nil),             // 19: kinegate.v1.EnergyWindow
-	(*AngleWindow)(nil),              // 20: kinegate.v1.AngleWindow
-	(*OpeningAngleWindow)(nil),       // 21: kinegate.v1.OpeningAngleWindow
-	(*CoplanarityWindow)(nil),        // 22: kinegate.v1.CoplanarityWindow
-	(*MissingDirectionWindow)(nil),   // 23: kinegate.v1.MissingDirectionWindow
-	(*MomentumTransferWindow)(nil),   // 24: kinegate.v1.MomentumTransferWindow
-	(*TimeDifferenceWindow)(nil),     // 25: kinegate.v1.TimeDifferenceWindow
-	(*UnusedPhotonEnergyWindow)(nil), // 26: kinegate.v1.UnusedPhotonEnergyWindow
-	(*VertexZWindow)(nil),            // 27: kinegate.v1.VertexZWindow
-	(*Ranking)(nil),                  // 28: kinegate.v1.Ranking
-	(*ClosestMasses)(nil),            // 29: kinegate.v1.ClosestMasses
-	(*MassReference)(nil),            // 30: kinegate.v1.MassReference
-	(*CheckSelectionRequest)(nil),    // 31: kinegate.v1.CheckSelectionRequest
-	(*CheckSelectionResponse)(nil),   // 32: kinegate.v1.CheckSelectionResponse
-	(*HypothesisOutline)(nil),        // 33: kinegate.v1.HypothesisOutline
-	(*JudgeBlockRequest)(nil),        // 34: kinegate.v1.JudgeBlockRequest
-	(*JudgeBlockResponse)(nil),       // 35: kinegate.v1.JudgeBlockResponse
-	(*SelectionSource)(nil),          // 36: kinegate.v1.SelectionSource
-	(*SelectionReference)(nil),       // 37: kinegate.v1.SelectionReference
-	(*JudgeRequest)(nil),             // 38: kinegate.v1.JudgeRequest
-	(*JudgeResponse)(nil),            // 39: kinegate.v1.JudgeResponse
-	(*JudgeOpen)(nil),                // 40: kinegate.v1.JudgeOpen
-	(*JudgeOpened)(nil),              // 41: kinegate.v1.JudgeOpened
-	(*Credit)(nil),                   // 42: kinegate.v1.Credit
-	(*Heartbeat)(nil),                // 43: kinegate.v1.Heartbeat
-	(*Draining)(nil),                 // 44: kinegate.v1.Draining
-	(*Reaction)(nil),                 // 45: kinegate.v1.Reaction
-	(*InitialState)(nil),             // 46: kinegate.v1.InitialState
-	(InitialParticle)(0),             // 47: kinegate.v1.InitialParticle
-	(*FieldFault)(nil),               // 48: kinegate.v1.FieldFault
-	(*EventBlock)(nil),               // 49: kinegate.v1.EventBlock
-	(*VerdictBlock)(nil),             // 50: kinegate.v1.VerdictBlock
-	(*Limits)(nil),                   // 51: kinegate.v1.Limits
+	(*MergedPhotons)(nil),            // 8: kinegate.v1.MergedPhotons
+	(*BeamSource)(nil),               // 9: kinegate.v1.BeamSource
+	(*TaggedBeam)(nil),               // 10: kinegate.v1.TaggedBeam
+	(*TimeWindow)(nil),               // 11: kinegate.v1.TimeWindow
+	(*ExtraObjects)(nil),             // 12: kinegate.v1.ExtraObjects
+	(*NoExtraObjects)(nil),           // 13: kinegate.v1.NoExtraObjects
+	(*AnyExtraObjects)(nil),          // 14: kinegate.v1.AnyExtraObjects
+	(*SoftPhotons)(nil),              // 15: kinegate.v1.SoftPhotons
+	(*Condition)(nil),                // 16: kinegate.v1.Condition
+	(*Window)(nil),                   // 17: kinegate.v1.Window
+	(*MassWindow)(nil),               // 18: kinegate.v1.MassWindow
+	(*MassSquaredWindow)(nil),        // 19: kinegate.v1.MassSquaredWindow
+	(*EnergyWindow)(nil),             // 20: kinegate.v1.EnergyWindow
+	(*AngleWindow)(nil),              // 21: kinegate.v1.AngleWindow
+	(*OpeningAngleWindow)(nil),       // 22: kinegate.v1.OpeningAngleWindow
+	(*CoplanarityWindow)(nil),        // 23: kinegate.v1.CoplanarityWindow
+	(*MissingDirectionWindow)(nil),   // 24: kinegate.v1.MissingDirectionWindow
+	(*MomentumTransferWindow)(nil),   // 25: kinegate.v1.MomentumTransferWindow
+	(*TimeDifferenceWindow)(nil),     // 26: kinegate.v1.TimeDifferenceWindow
+	(*UnusedPhotonEnergyWindow)(nil), // 27: kinegate.v1.UnusedPhotonEnergyWindow
+	(*VertexZWindow)(nil),            // 28: kinegate.v1.VertexZWindow
+	(*FlightDistanceWindow)(nil),     // 29: kinegate.v1.FlightDistanceWindow
+	(*PointingWindow)(nil),           // 30: kinegate.v1.PointingWindow
+	(*FitProbabilityWindow)(nil),     // 31: kinegate.v1.FitProbabilityWindow
+	(*Ranking)(nil),                  // 32: kinegate.v1.Ranking
+	(*RankByFitProbability)(nil),     // 33: kinegate.v1.RankByFitProbability
+	(*ClosestMasses)(nil),            // 34: kinegate.v1.ClosestMasses
+	(*MassReference)(nil),            // 35: kinegate.v1.MassReference
+	(*CheckSelectionRequest)(nil),    // 36: kinegate.v1.CheckSelectionRequest
+	(*CheckSelectionResponse)(nil),   // 37: kinegate.v1.CheckSelectionResponse
+	(*HypothesisOutline)(nil),        // 38: kinegate.v1.HypothesisOutline
+	(*JudgeBlockRequest)(nil),        // 39: kinegate.v1.JudgeBlockRequest
+	(*JudgeBlockResponse)(nil),       // 40: kinegate.v1.JudgeBlockResponse
+	(*ExplainVerdictRequest)(nil),    // 41: kinegate.v1.ExplainVerdictRequest
+	(*SelectionSource)(nil),          // 42: kinegate.v1.SelectionSource
+	(*SelectionReference)(nil),       // 43: kinegate.v1.SelectionReference
+	(*JudgeRequest)(nil),             // 44: kinegate.v1.JudgeRequest
+	(*JudgeResponse)(nil),            // 45: kinegate.v1.JudgeResponse
+	(*JudgeOpen)(nil),                // 46: kinegate.v1.JudgeOpen
+	(*JudgeOpened)(nil),              // 47: kinegate.v1.JudgeOpened
+	(*Credit)(nil),                   // 48: kinegate.v1.Credit
+	(*Heartbeat)(nil),                // 49: kinegate.v1.Heartbeat
+	(*Draining)(nil),                 // 50: kinegate.v1.Draining
+	(*Reaction)(nil),                 // 51: kinegate.v1.Reaction
+	(*Fit)(nil),                      // 52: kinegate.v1.Fit
+	(*InitialState)(nil),             // 53: kinegate.v1.InitialState
+	(InitialParticle)(0),             // 54: kinegate.v1.InitialParticle
+	(*FieldFault)(nil),               // 55: kinegate.v1.FieldFault
+	(*EventBlock)(nil),               // 56: kinegate.v1.EventBlock
+	(*VerdictBlock)(nil),             // 57: kinegate.v1.VerdictBlock
+	(*Limits)(nil),                   // 58: kinegate.v1.Limits
+	(*ExplainVerdictResponse)(nil),   // 59: kinegate.v1.ExplainVerdictResponse
 }
 var file_kinegate_v1_selection_proto_depIdxs = []int32{
 	5,  // 0: kinegate.v1.Selection.hypotheses:type_name -> kinegate.v1.Hypothesis
 	6,  // 1: kinegate.v1.Selection.groups:type_name -> kinegate.v1.Group
-	45, // 2: kinegate.v1.Hypothesis.structured_reaction:type_name -> kinegate.v1.Reaction
+	51, // 2: kinegate.v1.Hypothesis.structured_reaction:type_name -> kinegate.v1.Reaction
 	7,  // 3: kinegate.v1.Hypothesis.measurements:type_name -> kinegate.v1.ProductMeasurement
-	8,  // 4: kinegate.v1.Hypothesis.beam:type_name -> kinegate.v1.BeamSource
-	11, // 5: kinegate.v1.Hypothesis.extra_objects:type_name -> kinegate.v1.ExtraObjects
-	15, // 6: kinegate.v1.Hypothesis.condition:type_name -> kinegate.v1.Condition
-	28, // 7: kinegate.v1.Hypothesis.ranking:type_name -> kinegate.v1.Ranking
-	16, // 8: kinegate.v1.Hypothesis.record:type_name -> kinegate.v1.Window
+	9,  // 4: kinegate.v1.Hypothesis.beam:type_name -> kinegate.v1.BeamSource
+	12, // 5: kinegate.v1.Hypothesis.extra_objects:type_name -> kinegate.v1.ExtraObjects
+	16, // 6: kinegate.v1.Hypothesis.condition:type_name -> kinegate.v1.Condition
+	32, // 7: kinegate.v1.Hypothesis.ranking:type_name -> kinegate.v1.Ranking
+	17, // 8: kinegate.v1.Hypothesis.record:type_name -> kinegate.v1.Window
 	0,  // 9: kinegate.v1.Hypothesis.role:type_name -> kinegate.v1.Role
-	1,  // 10: kinegate.v1.ProductMeasurement.measurement:type_name -> kinegate.v1.Measurement
-	9,  // 11: kinegate.v1.BeamSource.tagged:type_name -> kinegate.v1.TaggedBeam
-	46, // 12: kinegate.v1.BeamSource.fixed:type_name -> kinegate.v1.InitialState
-	10, // 13: kinegate.v1.TaggedBeam.prompt:type_name -> kinegate.v1.TimeWindow
-	10, // 14: kinegate.v1.TaggedBeam.side_bands:type_name -> kinegate.v1.TimeWindow
-	12, // 15: kinegate.v1.ExtraObjects.none:type_name -> kinegate.v1.NoExtraObjects
-	14, // 16: kinegate.v1.ExtraObjects.soft_photons:type_name -> kinegate.v1.SoftPhotons
-	13, // 17: kinegate.v1.ExtraObjects.any:type_name -> kinegate.v1.AnyExtraObjects
-	16, // 18: kinegate.v1.Condition.window:type_name -> kinegate.v1.Window
-	15, // 19: kinegate.v1.Condition.all_of:type_name -> kinegate.v1.Condition
-	15, // 20: kinegate.v1.Condition.any_of:type_name -> kinegate.v1.Condition
-	15, // 21: kinegate.v1.Condition.not:type_name -> kinegate.v1.Condition
-	17, // 22: kinegate.v1.Window.invariant_mass:type_name -> kinegate.v1.MassWindow
-	18, // 23: kinegate.v1.Window.invariant_mass_squared:type_name -> kinegate.v1.MassSquaredWindow
-	17, // 24: kinegate.v1.Window.missing_mass:type_name -> kinegate.v1.MassWindow
-	18, // 25: kinegate.v1.Window.missing_mass_squared:type_name -> kinegate.v1.MassSquaredWindow
-	19, // 26: kinegate.v1.Window.energy:type_name -> kinegate.v1.EnergyWindow
-	19, // 27: kinegate.v1.Window.momentum:type_name -> kinegate.v1.EnergyWindow
-	19, // 28: kinegate.v1.Window.transverse_momentum:type_name -> kinegate.v1.EnergyWindow
-	20, // 29: kinegate.v1.Window.angle:type_name -> kinegate.v1.AngleWindow
-	21, // 30: kinegate.v1.Window.opening_angle:type_name -> kinegate.v1.OpeningAngleWindow
-	22, // 31: kinegate.v1.Window.coplanarity:type_name -> kinegate.v1.CoplanarityWindow
-	23, // 32: kinegate.v1.Window.missing_direction:type_name -> kinegate.v1.MissingDirectionWindow
-	24, // 33: kinegate.v1.Window.momentum_transfer:type_name -> kinegate.v1.MomentumTransferWindow
-	24, // 34: kinegate.v1.Window.momentum_transfer_prime:type_name -> kinegate.v1.MomentumTransferWindow
-	25, // 35: kinegate.v1.Window.time_difference:type_name -> kinegate.v1.TimeDifferenceWindow
-	26, // 36: kinegate.v1.Window.unused_photon_energy:type_name -> kinegate.v1.UnusedPhotonEnergyWindow
-	27, // 37: kinegate.v1.Window.vertex_z:type_name -> kinegate.v1.VertexZWindow
-	2,  // 38: kinegate.v1.EnergyWindow.frame:type_name -> kinegate.v1.Frame
-	2,  // 39: kinegate.v1.AngleWindow.frame:type_name -> kinegate.v1.Frame
-	2,  // 40: kinegate.v1.OpeningAngleWindow.frame:type_name -> kinegate.v1.Frame
-	47, // 41: kinegate.v1.MomentumTransferWindow.initial:type_name -> kinegate.v1.InitialParticle
-	29, // 42: kinegate.v1.Ranking.closest_masses:type_name -> kinegate.v1.ClosestMasses
-	30, // 43: kinegate.v1.ClosestMasses.masses:type_name -> kinegate.v1.MassReference
-	4,  // 44: kinegate.v1.CheckSelectionRequest.selection:type_name -> kinegate.v1.Selection
-	48, // 45: kinegate.v1.CheckSelectionResponse.faults:type_name -> kinegate.v1.FieldFault
-	4,  // 46: kinegate.v1.CheckSelectionResponse.selection:type_name -> kinegate.v1.Selection
-	33, // 47: kinegate.v1.CheckSelectionResponse.hypotheses:type_name -> kinegate.v1.HypothesisOutline
-	36, // 48: kinegate.v1.JudgeBlockRequest.selection:type_name -> kinegate.v1.SelectionSource
-	3,  // 49: kinegate.v1.JudgeBlockRequest.entries:type_name -> kinegate.v1.EntryDetail
-	49, // 50: kinegate.v1.JudgeBlockRequest.block:type_name -> kinegate.v1.EventBlock
-	50, // 51: kinegate.v1.JudgeBlockResponse.verdict:type_name -> kinegate.v1.VerdictBlock
-	4,  // 52: kinegate.v1.SelectionSource.inline:type_name -> kinegate.v1.Selection
-	37, // 53: kinegate.v1.SelectionSource.named:type_name -> kinegate.v1.SelectionReference
-	40, // 54: kinegate.v1.JudgeRequest.open:type_name -> kinegate.v1.JudgeOpen
-	49, // 55: kinegate.v1.JudgeRequest.block:type_name -> kinegate.v1.EventBlock
-	43, // 56: kinegate.v1.JudgeRequest.heartbeat:type_name -> kinegate.v1.Heartbeat
-	41, // 57: kinegate.v1.JudgeResponse.opened:type_name -> kinegate.v1.JudgeOpened
-	50, // 58: kinegate.v1.JudgeResponse.verdict:type_name -> kinegate.v1.VerdictBlock
-	43, // 59: kinegate.v1.JudgeResponse.heartbeat:type_name -> kinegate.v1.Heartbeat
-	44, // 60: kinegate.v1.JudgeResponse.draining:type_name -> kinegate.v1.Draining
-	36, // 61: kinegate.v1.JudgeOpen.selection:type_name -> kinegate.v1.SelectionSource
-	3,  // 62: kinegate.v1.JudgeOpen.entries:type_name -> kinegate.v1.EntryDetail
-	51, // 63: kinegate.v1.JudgeOpen.limits:type_name -> kinegate.v1.Limits
-	42, // 64: kinegate.v1.JudgeOpened.credit:type_name -> kinegate.v1.Credit
-	51, // 65: kinegate.v1.JudgeOpened.limits:type_name -> kinegate.v1.Limits
-	33, // 66: kinegate.v1.JudgeOpened.hypotheses:type_name -> kinegate.v1.HypothesisOutline
-	31, // 67: kinegate.v1.SelectionService.CheckSelection:input_type -> kinegate.v1.CheckSelectionRequest
-	34, // 68: kinegate.v1.SelectionService.JudgeBlock:input_type -> kinegate.v1.JudgeBlockRequest
-	38, // 69: kinegate.v1.SelectionService.Judge:input_type -> kinegate.v1.JudgeRequest
-	32, // 70: kinegate.v1.SelectionService.CheckSelection:output_type -> kinegate.v1.CheckSelectionResponse
-	35, // 71: kinegate.v1.SelectionService.JudgeBlock:output_type -> kinegate.v1.JudgeBlockResponse
-	39, // 72: kinegate.v1.SelectionService.Judge:output_type -> kinegate.v1.JudgeResponse
-	70, // [70:73] is the sub-list for method output_type
-	67, // [67:70] is the sub-list for method input_type
-	67, // [67:67] is the sub-list for extension type_name
-	67, // [67:67] is the sub-list for extension extendee
-	0,  // [0:67] is the sub-list for field type_name
+	52, // 10: kinegate.v1.Hypothesis.fit:type_name -> kinegate.v1.Fit
+	1,  // 11: kinegate.v1.ProductMeasurement.measurement:type_name -> kinegate.v1.Measurement
+	8,  // 12: kinegate.v1.ProductMeasurement.merged_photons:type_name -> kinegate.v1.MergedPhotons
+	10, // 13: kinegate.v1.BeamSource.tagged:type_name -> kinegate.v1.TaggedBeam
+	53, // 14: kinegate.v1.BeamSource.fixed:type_name -> kinegate.v1.InitialState
+	11, // 15: kinegate.v1.TaggedBeam.prompt:type_name -> kinegate.v1.TimeWindow
+	11, // 16: kinegate.v1.TaggedBeam.side_bands:type_name -> kinegate.v1.TimeWindow
+	13, // 17: kinegate.v1.ExtraObjects.none:type_name -> kinegate.v1.NoExtraObjects
+	15, // 18: kinegate.v1.ExtraObjects.soft_photons:type_name -> kinegate.v1.SoftPhotons
+	14, // 19: kinegate.v1.ExtraObjects.any:type_name -> kinegate.v1.AnyExtraObjects
+	17, // 20: kinegate.v1.Condition.window:type_name -> kinegate.v1.Window
+	16, // 21: kinegate.v1.Condition.all_of:type_name -> kinegate.v1.Condition
+	16, // 22: kinegate.v1.Condition.any_of:type_name -> kinegate.v1.Condition
+	16, // 23: kinegate.v1.Condition.not:type_name -> kinegate.v1.Condition
+	18, // 24: kinegate.v1.Window.invariant_mass:type_name -> kinegate.v1.MassWindow
+	19, // 25: kinegate.v1.Window.invariant_mass_squared:type_name -> kinegate.v1.MassSquaredWindow
+	18, // 26: kinegate.v1.Window.missing_mass:type_name -> kinegate.v1.MassWindow
+	19, // 27: kinegate.v1.Window.missing_mass_squared:type_name -> kinegate.v1.MassSquaredWindow
+	20, // 28: kinegate.v1.Window.energy:type_name -> kinegate.v1.EnergyWindow
+	20, // 29: kinegate.v1.Window.momentum:type_name -> kinegate.v1.EnergyWindow
+	20, // 30: kinegate.v1.Window.transverse_momentum:type_name -> kinegate.v1.EnergyWindow
+	21, // 31: kinegate.v1.Window.angle:type_name -> kinegate.v1.AngleWindow
+	22, // 32: kinegate.v1.Window.opening_angle:type_name -> kinegate.v1.OpeningAngleWindow
+	23, // 33: kinegate.v1.Window.coplanarity:type_name -> kinegate.v1.CoplanarityWindow
+	24, // 34: kinegate.v1.Window.missing_direction:type_name -> kinegate.v1.MissingDirectionWindow
+	25, // 35: kinegate.v1.Window.momentum_transfer:type_name -> kinegate.v1.MomentumTransferWindow
+	25, // 36: kinegate.v1.Window.momentum_transfer_prime:type_name -> kinegate.v1.MomentumTransferWindow
+	26, // 37: kinegate.v1.Window.time_difference:type_name -> kinegate.v1.TimeDifferenceWindow
+	27, // 38: kinegate.v1.Window.unused_photon_energy:type_name -> kinegate.v1.UnusedPhotonEnergyWindow
+	28, // 39: kinegate.v1.Window.vertex_z:type_name -> kinegate.v1.VertexZWindow
+	29, // 40: kinegate.v1.Window.flight_distance:type_name -> kinegate.v1.FlightDistanceWindow
+	30, // 41: kinegate.v1.Window.pointing:type_name -> kinegate.v1.PointingWindow
+	31, // 42: kinegate.v1.Window.fit_probability:type_name -> kinegate.v1.FitProbabilityWindow
+	2,  // 43: kinegate.v1.EnergyWindow.frame:type_name -> kinegate.v1.Frame
+	2,  // 44: kinegate.v1.AngleWindow.frame:type_name -> kinegate.v1.Frame
+	2,  // 45: kinegate.v1.OpeningAngleWindow.frame:type_name -> kinegate.v1.Frame
+	54, // 46: kinegate.v1.MomentumTransferWindow.initial:type_name -> kinegate.v1.InitialParticle
+	34, // 47: kinegate.v1.Ranking.closest_masses:type_name -> kinegate.v1.ClosestMasses
+	33, // 48: kinegate.v1.Ranking.fit_probability:type_name -> kinegate.v1.RankByFitProbability
+	35, // 49: kinegate.v1.ClosestMasses.masses:type_name -> kinegate.v1.MassReference
+	4,  // 50: kinegate.v1.CheckSelectionRequest.selection:type_name -> kinegate.v1.Selection
+	55, // 51: kinegate.v1.CheckSelectionResponse.faults:type_name -> kinegate.v1.FieldFault
+	4,  // 52: kinegate.v1.CheckSelectionResponse.selection:type_name -> kinegate.v1.Selection
+	38, // 53: kinegate.v1.CheckSelectionResponse.hypotheses:type_name -> kinegate.v1.HypothesisOutline
+	42, // 54: kinegate.v1.JudgeBlockRequest.selection:type_name -> kinegate.v1.SelectionSource
+	3,  // 55: kinegate.v1.JudgeBlockRequest.entries:type_name -> kinegate.v1.EntryDetail
+	56, // 56: kinegate.v1.JudgeBlockRequest.block:type_name -> kinegate.v1.EventBlock
+	57, // 57: kinegate.v1.JudgeBlockResponse.verdict:type_name -> kinegate.v1.VerdictBlock
+	42, // 58: kinegate.v1.ExplainVerdictRequest.selection:type_name -> kinegate.v1.SelectionSource
+	56, // 59: kinegate.v1.ExplainVerdictRequest.block:type_name -> kinegate.v1.EventBlock
+	4,  // 60: kinegate.v1.SelectionSource.inline:type_name -> kinegate.v1.Selection
+	43, // 61: kinegate.v1.SelectionSource.named:type_name -> kinegate.v1.SelectionReference
+	46, // 62: kinegate.v1.JudgeRequest.open:type_name -> kinegate.v1.JudgeOpen
+	56, // 63: kinegate.v1.JudgeRequest.block:type_name -> kinegate.v1.EventBlock
+	49, // 64: kinegate.v1.JudgeRequest.heartbeat:type_name -> kinegate.v1.Heartbeat
+	47, // 65: kinegate.v1.JudgeResponse.opened:type_name -> kinegate.v1.JudgeOpened
+	57, // 66: kinegate.v1.JudgeResponse.verdict:type_name -> kinegate.v1.VerdictBlock
+	49, // 67: kinegate.v1.JudgeResponse.heartbeat:type_name -> kinegate.v1.Heartbeat
+	50, // 68: kinegate.v1.JudgeResponse.draining:type_name -> kinegate.v1.Draining
+	42, // 69: kinegate.v1.JudgeOpen.selection:type_name -> kinegate.v1.SelectionSource
+	3,  // 70: kinegate.v1.JudgeOpen.entries:type_name -> kinegate.v1.EntryDetail
+	58, // 71: kinegate.v1.JudgeOpen.limits:type_name -> kinegate.v1.Limits
+	48, // 72: kinegate.v1.JudgeOpened.credit:type_name -> kinegate.v1.Credit
+	58, // 73: kinegate.v1.JudgeOpened.limits:type_name -> kinegate.v1.Limits
+	38, // 74: kinegate.v1.JudgeOpened.hypotheses:type_name -> kinegate.v1.HypothesisOutline
+	36, // 75: kinegate.v1.SelectionService.CheckSelection:input_type -> kinegate.v1.CheckSelectionRequest
+	39, // 76: kinegate.v1.SelectionService.JudgeBlock:input_type -> kinegate.v1.JudgeBlockRequest
+	44, // 77: kinegate.v1.SelectionService.Judge:input_type -> kinegate.v1.JudgeRequest
+	41, // 78: kinegate.v1.SelectionService.ExplainVerdict:input_type -> kinegate.v1.ExplainVerdictRequest
+	37, // 79: kinegate.v1.SelectionService.CheckSelection:output_type -> kinegate.v1.CheckSelectionResponse
+	40, // 80: kinegate.v1.SelectionService.JudgeBlock:output_type -> kinegate.v1.JudgeBlockResponse
+	45, // 81: kinegate.v1.SelectionService.Judge:output_type -> kinegate.v1.JudgeResponse
+	59, // 82: kinegate.v1.SelectionService.ExplainVerdict:output_type -> kinegate.v1.ExplainVerdictResponse
+	79, // [79:83] is the sub-list for method output_type
+	75, // [75:79] is the sub-list for method input_type
+	75, // [75:75] is the sub-list for extension type_name
+	75, // [75:75] is the sub-list for extension extendee
+	0,  // [0:75] is the sub-list for field type_name
 }
 
 func init() { file_kinegate_v1_selection_proto_init() }
@@ -3869,22 +4385,24 @@ func file_kinegate_v1_selection_proto_init() {
 		return
 	}
 	file_kinegate_v1_event_proto_init()
+	file_kinegate_v1_explanation_proto_init()
 	file_kinegate_v1_fault_proto_init()
+	file_kinegate_v1_fit_proto_init()
 	file_kinegate_v1_info_proto_init()
 	file_kinegate_v1_kinematics_proto_init()
 	file_kinegate_v1_reaction_proto_init()
 	file_kinegate_v1_verdict_proto_init()
-	file_kinegate_v1_selection_proto_msgTypes[4].OneofWrappers = []any{
+	file_kinegate_v1_selection_proto_msgTypes[5].OneofWrappers = []any{
 		(*BeamSource_Tagged)(nil),
 		(*BeamSource_Fixed)(nil),
 	}
-	file_kinegate_v1_selection_proto_msgTypes[6].OneofWrappers = []any{}
-	file_kinegate_v1_selection_proto_msgTypes[7].OneofWrappers = []any{
+	file_kinegate_v1_selection_proto_msgTypes[7].OneofWrappers = []any{}
+	file_kinegate_v1_selection_proto_msgTypes[8].OneofWrappers = []any{
 		(*ExtraObjects_None)(nil),
 		(*ExtraObjects_SoftPhotons)(nil),
 		(*ExtraObjects_Any)(nil),
 	}
-	file_kinegate_v1_selection_proto_msgTypes[12].OneofWrappers = []any{
+	file_kinegate_v1_selection_proto_msgTypes[13].OneofWrappers = []any{
 		(*Window_InvariantMass)(nil),
 		(*Window_InvariantMassSquared)(nil),
 		(*Window_MissingMass)(nil),
@@ -3901,8 +4419,10 @@ func file_kinegate_v1_selection_proto_init() {
 		(*Window_TimeDifference)(nil),
 		(*Window_UnusedPhotonEnergy)(nil),
 		(*Window_VertexZ)(nil),
+		(*Window_FlightDistance)(nil),
+		(*Window_Pointing)(nil),
+		(*Window_FitProbability)(nil),
 	}
-	file_kinegate_v1_selection_proto_msgTypes[13].OneofWrappers = []any{}
 	file_kinegate_v1_selection_proto_msgTypes[14].OneofWrappers = []any{}
 	file_kinegate_v1_selection_proto_msgTypes[15].OneofWrappers = []any{}
 	file_kinegate_v1_selection_proto_msgTypes[16].OneofWrappers = []any{}
@@ -3913,37 +4433,43 @@ func file_kinegate_v1_selection_proto_init() {
 	file_kinegate_v1_selection_proto_msgTypes[21].OneofWrappers = []any{}
 	file_kinegate_v1_selection_proto_msgTypes[22].OneofWrappers = []any{}
 	file_kinegate_v1_selection_proto_msgTypes[23].OneofWrappers = []any{}
-	file_kinegate_v1_selection_proto_msgTypes[24].OneofWrappers = []any{
-		(*Ranking_ClosestMasses)(nil),
-	}
+	file_kinegate_v1_selection_proto_msgTypes[24].OneofWrappers = []any{}
+	file_kinegate_v1_selection_proto_msgTypes[25].OneofWrappers = []any{}
 	file_kinegate_v1_selection_proto_msgTypes[26].OneofWrappers = []any{}
-	file_kinegate_v1_selection_proto_msgTypes[27].OneofWrappers = []any{
+	file_kinegate_v1_selection_proto_msgTypes[27].OneofWrappers = []any{}
+	file_kinegate_v1_selection_proto_msgTypes[28].OneofWrappers = []any{
+		(*Ranking_ClosestMasses)(nil),
+		(*Ranking_FitProbability)(nil),
+	}
+	file_kinegate_v1_selection_proto_msgTypes[31].OneofWrappers = []any{}
+	file_kinegate_v1_selection_proto_msgTypes[32].OneofWrappers = []any{
 		(*CheckSelectionRequest_Selection)(nil),
 		(*CheckSelectionRequest_Yaml)(nil),
 	}
-	file_kinegate_v1_selection_proto_msgTypes[32].OneofWrappers = []any{
+	file_kinegate_v1_selection_proto_msgTypes[34].OneofWrappers = []any{}
+	file_kinegate_v1_selection_proto_msgTypes[38].OneofWrappers = []any{
 		(*SelectionSource_Inline)(nil),
 		(*SelectionSource_Named)(nil),
 	}
-	file_kinegate_v1_selection_proto_msgTypes[34].OneofWrappers = []any{
+	file_kinegate_v1_selection_proto_msgTypes[40].OneofWrappers = []any{
 		(*JudgeRequest_Open)(nil),
 		(*JudgeRequest_Block)(nil),
 		(*JudgeRequest_Heartbeat)(nil),
 	}
-	file_kinegate_v1_selection_proto_msgTypes[35].OneofWrappers = []any{
+	file_kinegate_v1_selection_proto_msgTypes[41].OneofWrappers = []any{
 		(*JudgeResponse_Opened)(nil),
 		(*JudgeResponse_Verdict)(nil),
 		(*JudgeResponse_Heartbeat)(nil),
 		(*JudgeResponse_Draining)(nil),
 	}
-	file_kinegate_v1_selection_proto_msgTypes[36].OneofWrappers = []any{}
+	file_kinegate_v1_selection_proto_msgTypes[42].OneofWrappers = []any{}
 	type x struct{}
 	out := protoimpl.TypeBuilder{
 		File: protoimpl.DescBuilder{
 			GoPackagePath: reflect.TypeOf(x{}).PkgPath(),
 			RawDescriptor: unsafe.Slice(unsafe.StringData(file_kinegate_v1_selection_proto_rawDesc), len(file_kinegate_v1_selection_proto_rawDesc)),
 			NumEnums:      4,
-			NumMessages:   41,
+			NumMessages:   47,
 			NumExtensions: 0,
 			NumServices:   1,
 		},

@@ -26,6 +26,7 @@ const (
 	SelectionService_CheckSelection_FullMethodName = "/kinegate.v1.SelectionService/CheckSelection"
 	SelectionService_JudgeBlock_FullMethodName     = "/kinegate.v1.SelectionService/JudgeBlock"
 	SelectionService_Judge_FullMethodName          = "/kinegate.v1.SelectionService/Judge"
+	SelectionService_ExplainVerdict_FullMethodName = "/kinegate.v1.SelectionService/ExplainVerdict"
 )
 
 // SelectionServiceClient is the client API for SelectionService service.
@@ -43,6 +44,9 @@ type SelectionServiceClient interface {
 	// blocks come back in the order of their event blocks. It streams both ways
 	// because events come without end and each verdict is wanted at once.
 	Judge(ctx context.Context, opts ...grpc.CallOption) (grpc.BidiStreamingClient[JudgeRequest, JudgeResponse], error)
+	// ExplainVerdict lays the verdict on one event open: every assignment tried,
+	// every window, constraint and pull.
+	ExplainVerdict(ctx context.Context, in *ExplainVerdictRequest, opts ...grpc.CallOption) (*ExplainVerdictResponse, error)
 }
 
 type selectionServiceClient struct {
@@ -86,6 +90,16 @@ func (c *selectionServiceClient) Judge(ctx context.Context, opts ...grpc.CallOpt
 // This type alias is provided for backwards compatibility with existing code that references the prior non-generic stream type by name.
 type SelectionService_JudgeClient = grpc.BidiStreamingClient[JudgeRequest, JudgeResponse]
 
+func (c *selectionServiceClient) ExplainVerdict(ctx context.Context, in *ExplainVerdictRequest, opts ...grpc.CallOption) (*ExplainVerdictResponse, error) {
+	cOpts := append([]grpc.CallOption{grpc.StaticMethod()}, opts...)
+	out := new(ExplainVerdictResponse)
+	err := c.cc.Invoke(ctx, SelectionService_ExplainVerdict_FullMethodName, in, out, cOpts...)
+	if err != nil {
+		return nil, err
+	}
+	return out, nil
+}
+
 // SelectionServiceServer is the server API for SelectionService service.
 // All implementations must embed UnimplementedSelectionServiceServer
 // for forward compatibility.
@@ -101,6 +115,9 @@ type SelectionServiceServer interface {
 	// blocks come back in the order of their event blocks. It streams both ways
 	// because events come without end and each verdict is wanted at once.
 	Judge(grpc.BidiStreamingServer[JudgeRequest, JudgeResponse]) error
+	// ExplainVerdict lays the verdict on one event open: every assignment tried,
+	// every window, constraint and pull.
+	ExplainVerdict(context.Context, *ExplainVerdictRequest) (*ExplainVerdictResponse, error)
 	mustEmbedUnimplementedSelectionServiceServer()
 }
 
@@ -119,6 +136,9 @@ func (UnimplementedSelectionServiceServer) JudgeBlock(context.Context, *JudgeBlo
 }
 func (UnimplementedSelectionServiceServer) Judge(grpc.BidiStreamingServer[JudgeRequest, JudgeResponse]) error {
 	return status.Error(codes.Unimplemented, "method Judge not implemented")
+}
+func (UnimplementedSelectionServiceServer) ExplainVerdict(context.Context, *ExplainVerdictRequest) (*ExplainVerdictResponse, error) {
+	return nil, status.Error(codes.Unimplemented, "method ExplainVerdict not implemented")
 }
 func (UnimplementedSelectionServiceServer) mustEmbedUnimplementedSelectionServiceServer() {}
 func (UnimplementedSelectionServiceServer) testEmbeddedByValue()                          {}
@@ -184,6 +204,24 @@ func _SelectionService_Judge_Handler(srv interface{}, stream grpc.ServerStream) 
 // This type alias is provided for backwards compatibility with existing code that references the prior non-generic stream type by name.
 type SelectionService_JudgeServer = grpc.BidiStreamingServer[JudgeRequest, JudgeResponse]
 
+func _SelectionService_ExplainVerdict_Handler(srv interface{}, ctx context.Context, dec func(interface{}) error, interceptor grpc.UnaryServerInterceptor) (interface{}, error) {
+	in := new(ExplainVerdictRequest)
+	if err := dec(in); err != nil {
+		return nil, err
+	}
+	if interceptor == nil {
+		return srv.(SelectionServiceServer).ExplainVerdict(ctx, in)
+	}
+	info := &grpc.UnaryServerInfo{
+		Server:     srv,
+		FullMethod: SelectionService_ExplainVerdict_FullMethodName,
+	}
+	handler := func(ctx context.Context, req interface{}) (interface{}, error) {
+		return srv.(SelectionServiceServer).ExplainVerdict(ctx, req.(*ExplainVerdictRequest))
+	}
+	return interceptor(ctx, in, info, handler)
+}
+
 // SelectionService_ServiceDesc is the grpc.ServiceDesc for SelectionService service.
 // It's only intended for direct use with grpc.RegisterService,
 // and not to be introspected or modified (even as a copy)
@@ -198,6 +236,10 @@ var SelectionService_ServiceDesc = grpc.ServiceDesc{
 		{
 			MethodName: "JudgeBlock",
 			Handler:    _SelectionService_JudgeBlock_Handler,
+		},
+		{
+			MethodName: "ExplainVerdict",
+			Handler:    _SelectionService_ExplainVerdict_Handler,
 		},
 	},
 	Streams: []grpc.StreamDesc{

@@ -112,6 +112,9 @@ const (
 	EntryStatus_ENTRY_STATUS_ACCEPTED EntryStatus = 1
 	// No assignment passes; the entry describes the best one that was possible.
 	EntryStatus_ENTRY_STATUS_REJECTED EntryStatus = 2
+	// No assignment passes, and the fit of the one described, the best that was
+	// possible, did not converge: the status of the fit says how it ended.
+	EntryStatus_ENTRY_STATUS_FIT_FAILED EntryStatus = 3
 )
 
 // Enum value maps for EntryStatus.
@@ -120,11 +123,13 @@ var (
 		0: "ENTRY_STATUS_UNSPECIFIED",
 		1: "ENTRY_STATUS_ACCEPTED",
 		2: "ENTRY_STATUS_REJECTED",
+		3: "ENTRY_STATUS_FIT_FAILED",
 	}
 	EntryStatus_value = map[string]int32{
 		"ENTRY_STATUS_UNSPECIFIED": 0,
 		"ENTRY_STATUS_ACCEPTED":    1,
 		"ENTRY_STATUS_REJECTED":    2,
+		"ENTRY_STATUS_FIT_FAILED":  3,
 	}
 )
 
@@ -460,7 +465,14 @@ type EntryColumns struct {
 	ObservableOffsets []byte `protobuf:"bytes,9,opt,name=observable_offsets,json=observableOffsets,proto3" json:"observable_offsets,omitempty"`
 	// Values that the hypothesis records, in its order, float64 in the unit of
 	// the recorded observable; NaN means not computed.
-	Observables   []byte `protobuf:"bytes,10,opt,name=observables,proto3" json:"observables,omitempty"`
+	Observables []byte `protobuf:"bytes,10,opt,name=observables,proto3" json:"observables,omitempty"`
+	// Standard deviations of the observables, float64 in the same places and units,
+	// by linear propagation of all covariances at the measured values; NaN where
+	// there is none, and for hypotheses that do not ask. Absent unless a hypothesis
+	// of the selection asks for them.
+	ObservableUncertainties []byte `protobuf:"bytes,11,opt,name=observable_uncertainties,json=observableUncertainties,proto3,oneof" json:"observable_uncertainties,omitempty"`
+	// The fits; absent unless a hypothesis of the selection has one.
+	Fits          *FitColumns `protobuf:"bytes,12,opt,name=fits,proto3" json:"fits,omitempty"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
 }
@@ -565,6 +577,104 @@ func (x *EntryColumns) GetObservables() []byte {
 	return nil
 }
 
+func (x *EntryColumns) GetObservableUncertainties() []byte {
+	if x != nil {
+		return x.ObservableUncertainties
+	}
+	return nil
+}
+
+func (x *EntryColumns) GetFits() *FitColumns {
+	if x != nil {
+		return x.Fits
+	}
+	return nil
+}
+
+// FitColumns holds the fit of each entry's assignment.
+type FitColumns struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// Status of each fit, uint8, values of FitStatus; 0 without a fit.
+	Statuses []byte `protobuf:"bytes,1,opt,name=statuses,proto3" json:"statuses,omitempty"`
+	// Chi-square, float64; the minimum only where the fit converged, NaN without a
+	// fit.
+	ChiSquares []byte `protobuf:"bytes,2,opt,name=chi_squares,json=chiSquares,proto3" json:"chi_squares,omitempty"`
+	// Degrees of freedom, int16; 0 without a fit.
+	DegreesOfFreedom []byte `protobuf:"bytes,3,opt,name=degrees_of_freedom,json=degreesOfFreedom,proto3" json:"degrees_of_freedom,omitempty"`
+	// Probability of a larger chi-square, float64; NaN unless the fit converged
+	// with a degree of freedom.
+	Probabilities []byte `protobuf:"bytes,4,opt,name=probabilities,proto3" json:"probabilities,omitempty"`
+	// Number of steps, int16; 0 without a fit.
+	Iterations    []byte `protobuf:"bytes,5,opt,name=iterations,proto3" json:"iterations,omitempty"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
+}
+
+func (x *FitColumns) Reset() {
+	*x = FitColumns{}
+	mi := &file_kinegate_v1_verdict_proto_msgTypes[5]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *FitColumns) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*FitColumns) ProtoMessage() {}
+
+func (x *FitColumns) ProtoReflect() protoreflect.Message {
+	mi := &file_kinegate_v1_verdict_proto_msgTypes[5]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use FitColumns.ProtoReflect.Descriptor instead.
+func (*FitColumns) Descriptor() ([]byte, []int) {
+	return file_kinegate_v1_verdict_proto_rawDescGZIP(), []int{5}
+}
+
+func (x *FitColumns) GetStatuses() []byte {
+	if x != nil {
+		return x.Statuses
+	}
+	return nil
+}
+
+func (x *FitColumns) GetChiSquares() []byte {
+	if x != nil {
+		return x.ChiSquares
+	}
+	return nil
+}
+
+func (x *FitColumns) GetDegreesOfFreedom() []byte {
+	if x != nil {
+		return x.DegreesOfFreedom
+	}
+	return nil
+}
+
+func (x *FitColumns) GetProbabilities() []byte {
+	if x != nil {
+		return x.Probabilities
+	}
+	return nil
+}
+
+func (x *FitColumns) GetIterations() []byte {
+	if x != nil {
+		return x.Iterations
+	}
+	return nil
+}
+
 var File_kinegate_v1_verdict_proto protoreflect.FileDescriptor
 
 const file_kinegate_v1_verdict_proto_rawDesc = "" +
@@ -590,7 +700,7 @@ const file_kinegate_v1_verdict_proto_rawDesc = "" +
 	"\x0eHypothesisBits\x12\x1a\n" +
 	"\baccepted\x18\x01 \x01(\fR\baccepted\"\x1f\n" +
 	"\tGroupBest\x12\x12\n" +
-	"\x04best\x18\x01 \x01(\fR\x04best\"\xf9\x02\n" +
+	"\x04best\x18\x01 \x01(\fR\x04best\"\x83\x04\n" +
 	"\fEntryColumns\x12\x18\n" +
 	"\aoffsets\x18\x01 \x01(\fR\aoffsets\x12-\n" +
 	"\x12hypothesis_indices\x18\x02 \x01(\fR\x11hypothesisIndices\x12\x1b\n" +
@@ -602,7 +712,20 @@ const file_kinegate_v1_verdict_proto_rawDesc = "" +
 	"\vassignments\x18\b \x01(\fR\vassignments\x12-\n" +
 	"\x12observable_offsets\x18\t \x01(\fR\x11observableOffsets\x12 \n" +
 	"\vobservables\x18\n" +
-	" \x01(\fR\vobservables*\x98\x02\n" +
+	" \x01(\fR\vobservables\x12>\n" +
+	"\x18observable_uncertainties\x18\v \x01(\fH\x00R\x17observableUncertainties\x88\x01\x01\x12+\n" +
+	"\x04fits\x18\f \x01(\v2\x17.kinegate.v1.FitColumnsR\x04fitsB\x1b\n" +
+	"\x19_observable_uncertainties\"\xbd\x01\n" +
+	"\n" +
+	"FitColumns\x12\x1a\n" +
+	"\bstatuses\x18\x01 \x01(\fR\bstatuses\x12\x1f\n" +
+	"\vchi_squares\x18\x02 \x01(\fR\n" +
+	"chiSquares\x12,\n" +
+	"\x12degrees_of_freedom\x18\x03 \x01(\fR\x10degreesOfFreedom\x12$\n" +
+	"\rprobabilities\x18\x04 \x01(\fR\rprobabilities\x12\x1e\n" +
+	"\n" +
+	"iterations\x18\x05 \x01(\fR\n" +
+	"iterations*\x98\x02\n" +
 	"\vEventStatus\x12\x1c\n" +
 	"\x18EVENT_STATUS_UNSPECIFIED\x10\x00\x12\x17\n" +
 	"\x13EVENT_STATUS_JUDGED\x10\x01\x12\x1b\n" +
@@ -612,11 +735,12 @@ const file_kinegate_v1_verdict_proto_rawDesc = "" +
 	"\x19EVENT_STATUS_OUT_OF_RANGE\x10\x05\x12\x1a\n" +
 	"\x16EVENT_STATUS_OVERSIZED\x10\x06\x12\x18\n" +
 	"\x14EVENT_STATUS_EXPIRED\x10\a\x12\x1c\n" +
-	"\x18EVENT_STATUS_BUDGET_USED\x10\b*a\n" +
+	"\x18EVENT_STATUS_BUDGET_USED\x10\b*~\n" +
 	"\vEntryStatus\x12\x1c\n" +
 	"\x18ENTRY_STATUS_UNSPECIFIED\x10\x00\x12\x19\n" +
 	"\x15ENTRY_STATUS_ACCEPTED\x10\x01\x12\x19\n" +
-	"\x15ENTRY_STATUS_REJECTED\x10\x02B3Z1example.org/kinegate/proto/kinegate/v1;kinegatev1b\x06proto3"
+	"\x15ENTRY_STATUS_REJECTED\x10\x02\x12\x1b\n" +
+	"\x17ENTRY_STATUS_FIT_FAILED\x10\x03B3Z1example.org/kinegate/proto/kinegate/v1;kinegatev1b\x06proto3"
 
 var (
 	file_kinegate_v1_verdict_proto_rawDescOnce sync.Once
@@ -631,7 +755,7 @@ func file_kinegate_v1_verdict_proto_rawDescGZIP() []byte {
 }
 
 var file_kinegate_v1_verdict_proto_enumTypes = make([]protoimpl.EnumInfo, 2)
-var file_kinegate_v1_verdict_proto_msgTypes = make([]protoimpl.MessageInfo, 5)
+var file_kinegate_v1_verdict_proto_msgTypes = make([]protoimpl.MessageInfo, 6)
 var file_kinegate_v1_verdict_proto_goTypes = []any{
 	(EventStatus)(0),       // 0: kinegate.v1.EventStatus
 	(EntryStatus)(0),       // 1: kinegate.v1.EntryStatus
@@ -640,17 +764,19 @@ var file_kinegate_v1_verdict_proto_goTypes = []any{
 	(*HypothesisBits)(nil), // 4: kinegate.v1.HypothesisBits
 	(*GroupBest)(nil),      // 5: kinegate.v1.GroupBest
 	(*EntryColumns)(nil),   // 6: kinegate.v1.EntryColumns
+	(*FitColumns)(nil),     // 7: kinegate.v1.FitColumns
 }
 var file_kinegate_v1_verdict_proto_depIdxs = []int32{
 	3, // 0: kinegate.v1.VerdictBlock.rejected:type_name -> kinegate.v1.Rejection
 	4, // 1: kinegate.v1.VerdictBlock.hypotheses:type_name -> kinegate.v1.HypothesisBits
 	5, // 2: kinegate.v1.VerdictBlock.groups:type_name -> kinegate.v1.GroupBest
 	6, // 3: kinegate.v1.VerdictBlock.entries:type_name -> kinegate.v1.EntryColumns
-	4, // [4:4] is the sub-list for method output_type
-	4, // [4:4] is the sub-list for method input_type
-	4, // [4:4] is the sub-list for extension type_name
-	4, // [4:4] is the sub-list for extension extendee
-	0, // [0:4] is the sub-list for field type_name
+	7, // 4: kinegate.v1.EntryColumns.fits:type_name -> kinegate.v1.FitColumns
+	5, // [5:5] is the sub-list for method output_type
+	5, // [5:5] is the sub-list for method input_type
+	5, // [5:5] is the sub-list for extension type_name
+	5, // [5:5] is the sub-list for extension extendee
+	0, // [0:5] is the sub-list for field type_name
 }
 
 func init() { file_kinegate_v1_verdict_proto_init() }
@@ -658,13 +784,14 @@ func file_kinegate_v1_verdict_proto_init() {
 	if File_kinegate_v1_verdict_proto != nil {
 		return
 	}
+	file_kinegate_v1_verdict_proto_msgTypes[4].OneofWrappers = []any{}
 	type x struct{}
 	out := protoimpl.TypeBuilder{
 		File: protoimpl.DescBuilder{
 			GoPackagePath: reflect.TypeOf(x{}).PkgPath(),
 			RawDescriptor: unsafe.Slice(unsafe.StringData(file_kinegate_v1_verdict_proto_rawDesc), len(file_kinegate_v1_verdict_proto_rawDesc)),
 			NumEnums:      2,
-			NumMessages:   5,
+			NumMessages:   6,
 			NumExtensions: 0,
 			NumServices:   0,
 		},

@@ -1,5 +1,7 @@
 from kinegate.v1 import event_pb2 as _event_pb2
+from kinegate.v1 import explanation_pb2 as _explanation_pb2
 from kinegate.v1 import fault_pb2 as _fault_pb2
+from kinegate.v1 import fit_pb2 as _fit_pb2
 from kinegate.v1 import info_pb2 as _info_pb2
 from kinegate.v1 import kinematics_pb2 as _kinematics_pb2
 from kinegate.v1 import reaction_pb2 as _reaction_pb2
@@ -70,7 +72,7 @@ class Selection(_message.Message):
     def __init__(self, name: _Optional[str] = ..., description: _Optional[str] = ..., hypotheses: _Optional[_Iterable[_Union[Hypothesis, _Mapping]]] = ..., groups: _Optional[_Iterable[_Union[Group, _Mapping]]] = ..., assignment_budget_count: _Optional[int] = ...) -> None: ...
 
 class Hypothesis(_message.Message):
-    __slots__ = ("name", "reaction", "structured_reaction", "also_conjugate", "measurements", "beam", "extra_objects", "condition", "ranking", "record", "prescale_count", "role")
+    __slots__ = ("name", "reaction", "structured_reaction", "also_conjugate", "measurements", "beam", "extra_objects", "condition", "ranking", "record", "prescale_count", "role", "fit", "record_uncertainties")
     NAME_FIELD_NUMBER: _ClassVar[int]
     REACTION_FIELD_NUMBER: _ClassVar[int]
     STRUCTURED_REACTION_FIELD_NUMBER: _ClassVar[int]
@@ -83,6 +85,8 @@ class Hypothesis(_message.Message):
     RECORD_FIELD_NUMBER: _ClassVar[int]
     PRESCALE_COUNT_FIELD_NUMBER: _ClassVar[int]
     ROLE_FIELD_NUMBER: _ClassVar[int]
+    FIT_FIELD_NUMBER: _ClassVar[int]
+    RECORD_UNCERTAINTIES_FIELD_NUMBER: _ClassVar[int]
     name: str
     reaction: str
     structured_reaction: _kinematics_pb2.Reaction
@@ -95,7 +99,9 @@ class Hypothesis(_message.Message):
     record: _containers.RepeatedCompositeFieldContainer[Window]
     prescale_count: int
     role: Role
-    def __init__(self, name: _Optional[str] = ..., reaction: _Optional[str] = ..., structured_reaction: _Optional[_Union[_kinematics_pb2.Reaction, _Mapping]] = ..., also_conjugate: bool = ..., measurements: _Optional[_Iterable[_Union[ProductMeasurement, _Mapping]]] = ..., beam: _Optional[_Union[BeamSource, _Mapping]] = ..., extra_objects: _Optional[_Union[ExtraObjects, _Mapping]] = ..., condition: _Optional[_Union[Condition, _Mapping]] = ..., ranking: _Optional[_Union[Ranking, _Mapping]] = ..., record: _Optional[_Iterable[_Union[Window, _Mapping]]] = ..., prescale_count: _Optional[int] = ..., role: _Optional[_Union[Role, str]] = ...) -> None: ...
+    fit: _fit_pb2.Fit
+    record_uncertainties: bool
+    def __init__(self, name: _Optional[str] = ..., reaction: _Optional[str] = ..., structured_reaction: _Optional[_Union[_kinematics_pb2.Reaction, _Mapping]] = ..., also_conjugate: bool = ..., measurements: _Optional[_Iterable[_Union[ProductMeasurement, _Mapping]]] = ..., beam: _Optional[_Union[BeamSource, _Mapping]] = ..., extra_objects: _Optional[_Union[ExtraObjects, _Mapping]] = ..., condition: _Optional[_Union[Condition, _Mapping]] = ..., ranking: _Optional[_Union[Ranking, _Mapping]] = ..., record: _Optional[_Iterable[_Union[Window, _Mapping]]] = ..., prescale_count: _Optional[int] = ..., role: _Optional[_Union[Role, str]] = ..., fit: _Optional[_Union[_fit_pb2.Fit, _Mapping]] = ..., record_uncertainties: bool = ...) -> None: ...
 
 class Group(_message.Message):
     __slots__ = ("name", "hypotheses")
@@ -106,14 +112,22 @@ class Group(_message.Message):
     def __init__(self, name: _Optional[str] = ..., hypotheses: _Optional[_Iterable[str]] = ...) -> None: ...
 
 class ProductMeasurement(_message.Message):
-    __slots__ = ("product", "measurement", "mass_from_event")
+    __slots__ = ("product", "measurement", "mass_from_event", "merged_photons")
     PRODUCT_FIELD_NUMBER: _ClassVar[int]
     MEASUREMENT_FIELD_NUMBER: _ClassVar[int]
     MASS_FROM_EVENT_FIELD_NUMBER: _ClassVar[int]
+    MERGED_PHOTONS_FIELD_NUMBER: _ClassVar[int]
     product: str
     measurement: Measurement
     mass_from_event: bool
-    def __init__(self, product: _Optional[str] = ..., measurement: _Optional[_Union[Measurement, str]] = ..., mass_from_event: bool = ...) -> None: ...
+    merged_photons: MergedPhotons
+    def __init__(self, product: _Optional[str] = ..., measurement: _Optional[_Union[Measurement, str]] = ..., mass_from_event: bool = ..., merged_photons: _Optional[_Union[MergedPhotons, _Mapping]] = ...) -> None: ...
+
+class MergedPhotons(_message.Message):
+    __slots__ = ("min_energy_gev",)
+    MIN_ENERGY_GEV_FIELD_NUMBER: _ClassVar[int]
+    min_energy_gev: float
+    def __init__(self, min_energy_gev: _Optional[float] = ...) -> None: ...
 
 class BeamSource(_message.Message):
     __slots__ = ("tagged", "fixed")
@@ -179,7 +193,7 @@ class Condition(_message.Message):
     def __init__(self, window: _Optional[_Union[Window, _Mapping]] = ..., all_of: _Optional[_Iterable[_Union[Condition, _Mapping]]] = ..., any_of: _Optional[_Iterable[_Union[Condition, _Mapping]]] = ..., **kwargs) -> None: ...
 
 class Window(_message.Message):
-    __slots__ = ("name", "invariant_mass", "invariant_mass_squared", "missing_mass", "missing_mass_squared", "energy", "momentum", "transverse_momentum", "angle", "opening_angle", "coplanarity", "missing_direction", "momentum_transfer", "momentum_transfer_prime", "time_difference", "unused_photon_energy", "vertex_z")
+    __slots__ = ("name", "invariant_mass", "invariant_mass_squared", "missing_mass", "missing_mass_squared", "energy", "momentum", "transverse_momentum", "angle", "opening_angle", "coplanarity", "missing_direction", "momentum_transfer", "momentum_transfer_prime", "time_difference", "unused_photon_energy", "vertex_z", "flight_distance", "pointing", "fit_probability")
     NAME_FIELD_NUMBER: _ClassVar[int]
     INVARIANT_MASS_FIELD_NUMBER: _ClassVar[int]
     INVARIANT_MASS_SQUARED_FIELD_NUMBER: _ClassVar[int]
@@ -197,6 +211,9 @@ class Window(_message.Message):
     TIME_DIFFERENCE_FIELD_NUMBER: _ClassVar[int]
     UNUSED_PHOTON_ENERGY_FIELD_NUMBER: _ClassVar[int]
     VERTEX_Z_FIELD_NUMBER: _ClassVar[int]
+    FLIGHT_DISTANCE_FIELD_NUMBER: _ClassVar[int]
+    POINTING_FIELD_NUMBER: _ClassVar[int]
+    FIT_PROBABILITY_FIELD_NUMBER: _ClassVar[int]
     name: str
     invariant_mass: MassWindow
     invariant_mass_squared: MassSquaredWindow
@@ -214,7 +231,10 @@ class Window(_message.Message):
     time_difference: TimeDifferenceWindow
     unused_photon_energy: UnusedPhotonEnergyWindow
     vertex_z: VertexZWindow
-    def __init__(self, name: _Optional[str] = ..., invariant_mass: _Optional[_Union[MassWindow, _Mapping]] = ..., invariant_mass_squared: _Optional[_Union[MassSquaredWindow, _Mapping]] = ..., missing_mass: _Optional[_Union[MassWindow, _Mapping]] = ..., missing_mass_squared: _Optional[_Union[MassSquaredWindow, _Mapping]] = ..., energy: _Optional[_Union[EnergyWindow, _Mapping]] = ..., momentum: _Optional[_Union[EnergyWindow, _Mapping]] = ..., transverse_momentum: _Optional[_Union[EnergyWindow, _Mapping]] = ..., angle: _Optional[_Union[AngleWindow, _Mapping]] = ..., opening_angle: _Optional[_Union[OpeningAngleWindow, _Mapping]] = ..., coplanarity: _Optional[_Union[CoplanarityWindow, _Mapping]] = ..., missing_direction: _Optional[_Union[MissingDirectionWindow, _Mapping]] = ..., momentum_transfer: _Optional[_Union[MomentumTransferWindow, _Mapping]] = ..., momentum_transfer_prime: _Optional[_Union[MomentumTransferWindow, _Mapping]] = ..., time_difference: _Optional[_Union[TimeDifferenceWindow, _Mapping]] = ..., unused_photon_energy: _Optional[_Union[UnusedPhotonEnergyWindow, _Mapping]] = ..., vertex_z: _Optional[_Union[VertexZWindow, _Mapping]] = ...) -> None: ...
+    flight_distance: FlightDistanceWindow
+    pointing: PointingWindow
+    fit_probability: FitProbabilityWindow
+    def __init__(self, name: _Optional[str] = ..., invariant_mass: _Optional[_Union[MassWindow, _Mapping]] = ..., invariant_mass_squared: _Optional[_Union[MassSquaredWindow, _Mapping]] = ..., missing_mass: _Optional[_Union[MassWindow, _Mapping]] = ..., missing_mass_squared: _Optional[_Union[MassSquaredWindow, _Mapping]] = ..., energy: _Optional[_Union[EnergyWindow, _Mapping]] = ..., momentum: _Optional[_Union[EnergyWindow, _Mapping]] = ..., transverse_momentum: _Optional[_Union[EnergyWindow, _Mapping]] = ..., angle: _Optional[_Union[AngleWindow, _Mapping]] = ..., opening_angle: _Optional[_Union[OpeningAngleWindow, _Mapping]] = ..., coplanarity: _Optional[_Union[CoplanarityWindow, _Mapping]] = ..., missing_direction: _Optional[_Union[MissingDirectionWindow, _Mapping]] = ..., momentum_transfer: _Optional[_Union[MomentumTransferWindow, _Mapping]] = ..., momentum_transfer_prime: _Optional[_Union[MomentumTransferWindow, _Mapping]] = ..., time_difference: _Optional[_Union[TimeDifferenceWindow, _Mapping]] = ..., unused_photon_energy: _Optional[_Union[UnusedPhotonEnergyWindow, _Mapping]] = ..., vertex_z: _Optional[_Union[VertexZWindow, _Mapping]] = ..., flight_distance: _Optional[_Union[FlightDistanceWindow, _Mapping]] = ..., pointing: _Optional[_Union[PointingWindow, _Mapping]] = ..., fit_probability: _Optional[_Union[FitProbabilityWindow, _Mapping]] = ...) -> None: ...
 
 class MassWindow(_message.Message):
     __slots__ = ("products", "min_gev", "max_gev")
@@ -332,11 +352,45 @@ class VertexZWindow(_message.Message):
     max_m: float
     def __init__(self, min_m: _Optional[float] = ..., max_m: _Optional[float] = ...) -> None: ...
 
+class FlightDistanceWindow(_message.Message):
+    __slots__ = ("product", "min_m", "max_m")
+    PRODUCT_FIELD_NUMBER: _ClassVar[int]
+    MIN_M_FIELD_NUMBER: _ClassVar[int]
+    MAX_M_FIELD_NUMBER: _ClassVar[int]
+    product: str
+    min_m: float
+    max_m: float
+    def __init__(self, product: _Optional[str] = ..., min_m: _Optional[float] = ..., max_m: _Optional[float] = ...) -> None: ...
+
+class PointingWindow(_message.Message):
+    __slots__ = ("product", "min_rad", "max_rad")
+    PRODUCT_FIELD_NUMBER: _ClassVar[int]
+    MIN_RAD_FIELD_NUMBER: _ClassVar[int]
+    MAX_RAD_FIELD_NUMBER: _ClassVar[int]
+    product: str
+    min_rad: float
+    max_rad: float
+    def __init__(self, product: _Optional[str] = ..., min_rad: _Optional[float] = ..., max_rad: _Optional[float] = ...) -> None: ...
+
+class FitProbabilityWindow(_message.Message):
+    __slots__ = ("min", "max")
+    MIN_FIELD_NUMBER: _ClassVar[int]
+    MAX_FIELD_NUMBER: _ClassVar[int]
+    min: float
+    max: float
+    def __init__(self, min: _Optional[float] = ..., max: _Optional[float] = ...) -> None: ...
+
 class Ranking(_message.Message):
-    __slots__ = ("closest_masses",)
+    __slots__ = ("closest_masses", "fit_probability")
     CLOSEST_MASSES_FIELD_NUMBER: _ClassVar[int]
+    FIT_PROBABILITY_FIELD_NUMBER: _ClassVar[int]
     closest_masses: ClosestMasses
-    def __init__(self, closest_masses: _Optional[_Union[ClosestMasses, _Mapping]] = ...) -> None: ...
+    fit_probability: RankByFitProbability
+    def __init__(self, closest_masses: _Optional[_Union[ClosestMasses, _Mapping]] = ..., fit_probability: _Optional[_Union[RankByFitProbability, _Mapping]] = ...) -> None: ...
+
+class RankByFitProbability(_message.Message):
+    __slots__ = ()
+    def __init__(self) -> None: ...
 
 class ClosestMasses(_message.Message):
     __slots__ = ("masses",)
@@ -377,16 +431,18 @@ class CheckSelectionResponse(_message.Message):
     def __init__(self, faults: _Optional[_Iterable[_Union[_fault_pb2.FieldFault, _Mapping]]] = ..., selection: _Optional[_Union[Selection, _Mapping]] = ..., selection_digest: _Optional[str] = ..., hypotheses: _Optional[_Iterable[_Union[HypothesisOutline, _Mapping]]] = ..., largest_reply_byte_count: _Optional[int] = ...) -> None: ...
 
 class HypothesisOutline(_message.Message):
-    __slots__ = ("name", "reaction", "products", "observables")
+    __slots__ = ("name", "reaction", "products", "observables", "degrees_of_freedom")
     NAME_FIELD_NUMBER: _ClassVar[int]
     REACTION_FIELD_NUMBER: _ClassVar[int]
     PRODUCTS_FIELD_NUMBER: _ClassVar[int]
     OBSERVABLES_FIELD_NUMBER: _ClassVar[int]
+    DEGREES_OF_FREEDOM_FIELD_NUMBER: _ClassVar[int]
     name: str
     reaction: str
     products: _containers.RepeatedScalarFieldContainer[str]
     observables: _containers.RepeatedScalarFieldContainer[str]
-    def __init__(self, name: _Optional[str] = ..., reaction: _Optional[str] = ..., products: _Optional[_Iterable[str]] = ..., observables: _Optional[_Iterable[str]] = ...) -> None: ...
+    degrees_of_freedom: int
+    def __init__(self, name: _Optional[str] = ..., reaction: _Optional[str] = ..., products: _Optional[_Iterable[str]] = ..., observables: _Optional[_Iterable[str]] = ..., degrees_of_freedom: _Optional[int] = ...) -> None: ...
 
 class JudgeBlockRequest(_message.Message):
     __slots__ = ("selection", "entries", "block")
@@ -403,6 +459,18 @@ class JudgeBlockResponse(_message.Message):
     VERDICT_FIELD_NUMBER: _ClassVar[int]
     verdict: _verdict_pb2.VerdictBlock
     def __init__(self, verdict: _Optional[_Union[_verdict_pb2.VerdictBlock, _Mapping]] = ...) -> None: ...
+
+class ExplainVerdictRequest(_message.Message):
+    __slots__ = ("selection", "block", "event_index", "max_assignment_count")
+    SELECTION_FIELD_NUMBER: _ClassVar[int]
+    BLOCK_FIELD_NUMBER: _ClassVar[int]
+    EVENT_INDEX_FIELD_NUMBER: _ClassVar[int]
+    MAX_ASSIGNMENT_COUNT_FIELD_NUMBER: _ClassVar[int]
+    selection: SelectionSource
+    block: _event_pb2.EventBlock
+    event_index: int
+    max_assignment_count: int
+    def __init__(self, selection: _Optional[_Union[SelectionSource, _Mapping]] = ..., block: _Optional[_Union[_event_pb2.EventBlock, _Mapping]] = ..., event_index: _Optional[int] = ..., max_assignment_count: _Optional[int] = ...) -> None: ...
 
 class SelectionSource(_message.Message):
     __slots__ = ("inline", "named")

@@ -3,6 +3,7 @@
 import grpc
 import warnings
 
+from kinegate.v1 import explanation_pb2 as kinegate_dot_v1_dot_explanation__pb2
 from kinegate.v1 import selection_pb2 as kinegate_dot_v1_dot_selection__pb2
 
 GRPC_GENERATED_VERSION = '1.76.0'
@@ -50,6 +51,11 @@ class SelectionServiceStub(object):
                 request_serializer=kinegate_dot_v1_dot_selection__pb2.JudgeRequest.SerializeToString,
                 response_deserializer=kinegate_dot_v1_dot_selection__pb2.JudgeResponse.FromString,
                 _registered_method=True)
+        self.ExplainVerdict = channel.unary_unary(
+                '/kinegate.v1.SelectionService/ExplainVerdict',
+                request_serializer=kinegate_dot_v1_dot_selection__pb2.ExplainVerdictRequest.SerializeToString,
+                response_deserializer=kinegate_dot_v1_dot_explanation__pb2.ExplainVerdictResponse.FromString,
+                _registered_method=True)
 
 
 class SelectionServiceServicer(object):
@@ -80,6 +86,14 @@ class SelectionServiceServicer(object):
         context.set_details('Method not implemented!')
         raise NotImplementedError('Method not implemented!')
 
+    def ExplainVerdict(self, request, context):
+        """ExplainVerdict lays the verdict on one event open: every assignment tried,
+        every window, constraint and pull.
+        """
+        context.set_code(grpc.StatusCode.UNIMPLEMENTED)
+        context.set_details('Method not implemented!')
+        raise NotImplementedError('Method not implemented!')
+
 
 def add_SelectionServiceServicer_to_server(servicer, server):
     rpc_method_handlers = {
@@ -97,6 +111,11 @@ def add_SelectionServiceServicer_to_server(servicer, server):
                     servicer.Judge,
                     request_deserializer=kinegate_dot_v1_dot_selection__pb2.JudgeRequest.FromString,
                     response_serializer=kinegate_dot_v1_dot_selection__pb2.JudgeResponse.SerializeToString,
+            ),
+            'ExplainVerdict': grpc.unary_unary_rpc_method_handler(
+                    servicer.ExplainVerdict,
+                    request_deserializer=kinegate_dot_v1_dot_selection__pb2.ExplainVerdictRequest.FromString,
+                    response_serializer=kinegate_dot_v1_dot_explanation__pb2.ExplainVerdictResponse.SerializeToString,
             ),
     }
     generic_handler = grpc.method_handlers_generic_handler(
@@ -181,6 +200,33 @@ class SelectionService(object):
             '/kinegate.v1.SelectionService/Judge',
             kinegate_dot_v1_dot_selection__pb2.JudgeRequest.SerializeToString,
             kinegate_dot_v1_dot_selection__pb2.JudgeResponse.FromString,
+            options,
+            channel_credentials,
+            insecure,
+            call_credentials,
+            compression,
+            wait_for_ready,
+            timeout,
+            metadata,
+            _registered_method=True)
+
+    @staticmethod
+    def ExplainVerdict(request,
+            target,
+            options=(),
+            channel_credentials=None,
+            call_credentials=None,
+            insecure=False,
+            compression=None,
+            wait_for_ready=None,
+            timeout=None,
+            metadata=None):
+        return grpc.experimental.unary_unary(
+            request,
+            target,
+            '/kinegate.v1.SelectionService/ExplainVerdict',
+            kinegate_dot_v1_dot_selection__pb2.ExplainVerdictRequest.SerializeToString,
+            kinegate_dot_v1_dot_explanation__pb2.ExplainVerdictResponse.FromString,
             options,
             channel_credentials,
             insecure,

@@ -8,6 +8,7 @@ Selection message in snake_case.
 
 from collections import abc as _abc
 from grpc import aio as _aio
+from kinegate.v1 import explanation_pb2 as _explanation_pb2
 from kinegate.v1 import selection_pb2 as _selection_pb2
 import abc as _abc_1
 import grpc as _grpc
@@ -47,6 +48,10 @@ class SelectionServiceStub:
     blocks come back in the order of their event blocks. It streams both ways
     because events come without end and each verdict is wanted at once.
     """
+    ExplainVerdict: _grpc.UnaryUnaryMultiCallable[_selection_pb2.ExplainVerdictRequest, _explanation_pb2.ExplainVerdictResponse]
+    """ExplainVerdict lays the verdict on one event open: every assignment tried,
+    every window, constraint and pull.
+    """
 
 @_typing.type_check_only
 class SelectionServiceAsyncStub(SelectionServiceStub):
@@ -63,6 +68,10 @@ class SelectionServiceAsyncStub(SelectionServiceStub):
     """Judge judges blocks as they come. The first frame must be open; verdict
     blocks come back in the order of their event blocks. It streams both ways
     because events come without end and each verdict is wanted at once.
+    """
+    ExplainVerdict: _aio.UnaryUnaryMultiCallable[_selection_pb2.ExplainVerdictRequest, _explanation_pb2.ExplainVerdictResponse]  # type: ignore[assignment]
+    """ExplainVerdict lays the verdict on one event open: every assignment tried,
+    every window, constraint and pull.
     """
 
 class SelectionServiceServicer(metaclass=_abc_1.ABCMeta):
@@ -95,6 +104,16 @@ class SelectionServiceServicer(metaclass=_abc_1.ABCMeta):
         """Judge judges blocks as they come. The first frame must be open; verdict
         blocks come back in the order of their event blocks. It streams both ways
         because events come without end and each verdict is wanted at once.
+        """
+
+    @_abc_1.abstractmethod
+    def ExplainVerdict(
+        self,
+        request: _selection_pb2.ExplainVerdictRequest,
+        context: _ServicerContext,
+    ) -> _typing.Union[_explanation_pb2.ExplainVerdictResponse, _abc.Awaitable[_explanation_pb2.ExplainVerdictResponse]]:
+        """ExplainVerdict lays the verdict on one event open: every assignment tried,
+        every window, constraint and pull.
         """
 
 def add_SelectionServiceServicer_to_server(servicer: SelectionServiceServicer, server: _typing.Union[_grpc.Server, _aio.Server]) -> None: ...

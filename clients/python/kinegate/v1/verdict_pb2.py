@@ -24,7 +24,7 @@ _sym_db = _symbol_database.Default()
 
 
 
-DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n\x19kinegate/v1/verdict.proto\x12\x0bkinegate.v1\"\x9e\x02\n\x0cVerdictBlock\x12\x10\n\x08sequence\x18\x01 \x01(\x03\x12(\n\x08rejected\x18\x02 \x01(\x0b\x32\x16.kinegate.v1.Rejection\x12\x18\n\x10selection_digest\x18\x03 \x01(\t\x12\x13\n\x0b\x65vent_count\x18\x04 \x01(\x05\x12\x10\n\x08statuses\x18\x05 \x01(\x0c\x12\x0c\n\x04gate\x18\x06 \x01(\x0c\x12/\n\nhypotheses\x18\x07 \x03(\x0b\x32\x1b.kinegate.v1.HypothesisBits\x12&\n\x06groups\x18\x08 \x03(\x0b\x32\x16.kinegate.v1.GroupBest\x12*\n\x07\x65ntries\x18\t \x01(\x0b\x32\x19.kinegate.v1.EntryColumns\";\n\tRejection\x12\x0e\n\x06reason\x18\x01 \x01(\t\x12\r\n\x05\x66ield\x18\x02 \x01(\t\x12\x0f\n\x07message\x18\x03 \x01(\t\"\"\n\x0eHypothesisBits\x12\x10\n\x08\x61\x63\x63\x65pted\x18\x01 \x01(\x0c\"\x19\n\tGroupBest\x12\x0c\n\x04\x62\x65st\x18\x01 \x01(\x0c\"\xee\x01\n\x0c\x45ntryColumns\x12\x0f\n\x07offsets\x18\x01 \x01(\x0c\x12\x1a\n\x12hypothesis_indices\x18\x02 \x01(\x0c\x12\x11\n\tbeam_rows\x18\x03 \x01(\x0c\x12\x0f\n\x07weights\x18\x04 \x01(\x0c\x12\x10\n\x08statuses\x18\x05 \x01(\x0c\x12\x19\n\x11\x61ssignments_tried\x18\x06 \x01(\x0c\x12\x1a\n\x12\x61ssignment_offsets\x18\x07 \x01(\x0c\x12\x13\n\x0b\x61ssignments\x18\x08 \x01(\x0c\x12\x1a\n\x12observable_offsets\x18\t \x01(\x0c\x12\x13\n\x0bobservables\x18\n \x01(\x0c*\x98\x02\n\x0b\x45ventStatus\x12\x1c\n\x18\x45VENT_STATUS_UNSPECIFIED\x10\x00\x12\x17\n\x13\x45VENT_STATUS_JUDGED\x10\x01\x12\x1b\n\x17\x45VENT_STATUS_NON_FINITE\x10\x02\x12 \n\x1c\x45VENT_STATUS_NEGATIVE_ENERGY\x10\x03\x12 \n\x1c\x45VENT_STATUS_NEGATIVE_SPREAD\x10\x04\x12\x1d\n\x19\x45VENT_STATUS_OUT_OF_RANGE\x10\x05\x12\x1a\n\x16\x45VENT_STATUS_OVERSIZED\x10\x06\x12\x18\n\x14\x45VENT_STATUS_EXPIRED\x10\x07\x12\x1c\n\x18\x45VENT_STATUS_BUDGET_USED\x10\x08*a\n\x0b\x45ntryStatus\x12\x1c\n\x18\x45NTRY_STATUS_UNSPECIFIED\x10\x00\x12\x19\n\x15\x45NTRY_STATUS_ACCEPTED\x10\x01\x12\x19\n\x15\x45NTRY_STATUS_REJECTED\x10\x02\x42\x33Z1example.org/kinegate/proto/kinegate/v1;kinegatev1b\x06proto3')
+DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n\x19kinegate/v1/verdict.proto\x12\x0bkinegate.v1\"\x9e\x02\n\x0cVerdictBlock\x12\x10\n\x08sequence\x18\x01 \x01(\x03\x12(\n\x08rejected\x18\x02 \x01(\x0b\x32\x16.kinegate.v1.Rejection\x12\x18\n\x10selection_digest\x18\x03 \x01(\t\x12\x13\n\x0b\x65vent_count\x18\x04 \x01(\x05\x12\x10\n\x08statuses\x18\x05 \x01(\x0c\x12\x0c\n\x04gate\x18\x06 \x01(\x0c\x12/\n\nhypotheses\x18\x07 \x03(\x0b\x32\x1b.kinegate.v1.HypothesisBits\x12&\n\x06groups\x18\x08 \x03(\x0b\x32\x16.kinegate.v1.GroupBest\x12*\n\x07\x65ntries\x18\t \x01(\x0b\x32\x19.kinegate.v1.EntryColumns\";\n\tRejection\x12\x0e\n\x06reason\x18\x01 \x01(\t\x12\r\n\x05\x66ield\x18\x02 \x01(\t\x12\x0f\n\x07message\x18\x03 \x01(\t\"\"\n\x0eHypothesisBits\x12\x10\n\x08\x61\x63\x63\x65pted\x18\x01 \x01(\x0c\"\x19\n\tGroupBest\x12\x0c\n\x04\x62\x65st\x18\x01 \x01(\x0c\"\xd9\x02\n\x0c\x45ntryColumns\x12\x0f\n\x07offsets\x18\x01 \x01(\x0c\x12\x1a\n\x12hypothesis_indices\x18\x02 \x01(\x0c\x12\x11\n\tbeam_rows\x18\x03 \x01(\x0c\x12\x0f\n\x07weights\x18\x04 \x01(\x0c\x12\x10\n\x08statuses\x18\x05 \x01(\x0c\x12\x19\n\x11\x61ssignments_tried\x18\x06 \x01(\x0c\x12\x1a\n\x12\x61ssignment_offsets\x18\x07 \x01(\x0c\x12\x13\n\x0b\x61ssignments\x18\x08 \x01(\x0c\x12\x1a\n\x12observable_offsets\x18\t \x01(\x0c\x12\x13\n\x0bobservables\x18\n \x01(\x0c\x12%\n\x18observable_uncertainties\x18\x0b \x01(\x0cH\x00\x88\x01\x01\x12%\n\x04\x66its\x18\x0c \x01(\x0b\x32\x17.kinegate.v1.FitColumnsB\x1b\n\x19_observable_uncertainties\"z\n\nFitColumns\x12\x10\n\x08statuses\x18\x01 \x01(\x0c\x12\x13\n\x0b\x63hi_squares\x18\x02 \x01(\x0c\x12\x1a\n\x12\x64\x65grees_of_freedom\x18\x03 \x01(\x0c\x12\x15\n\rprobabilities\x18\x04 \x01(\x0c\x12\x12\n\niterations\x18\x05 \x01(\x0c*\x98\x02\n\x0b\x45ventStatus\x12\x1c\n\x18\x45VENT_STATUS_UNSPECIFIED\x10\x00\x12\x17\n\x13\x45VENT_STATUS_JUDGED\x10\x01\x12\x1b\n\x17\x45VENT_STATUS_NON_FINITE\x10\x02\x12 \n\x1c\x45VENT_STATUS_NEGATIVE_ENERGY\x10\x03\x12 \n\x1c\x45VENT_STATUS_NEGATIVE_SPREAD\x10\x04\x12\x1d\n\x19\x45VENT_STATUS_OUT_OF_RANGE\x10\x05\x12\x1a\n\x16\x45VENT_STATUS_OVERSIZED\x10\x06\x12\x18\n\x14\x45VENT_STATUS_EXPIRED\x10\x07\x12\x1c\n\x18\x45VENT_STATUS_BUDGET_USED\x10\x08*~\n\x0b\x45ntryStatus\x12\x1c\n\x18\x45NTRY_STATUS_UNSPECIFIED\x10\x00\x12\x19\n\x15\x45NTRY_STATUS_ACCEPTED\x10\x01\x12\x19\n\x15\x45NTRY_STATUS_REJECTED\x10\x02\x12\x1b\n\x17\x45NTRY_STATUS_FIT_FAILED\x10\x03\x42\x33Z1example.org/kinegate/proto/kinegate/v1;kinegatev1b\x06proto3')
 
 _globals = globals()
 _builder.BuildMessageAndEnumDescriptors(DESCRIPTOR, _globals)
@@ -32,10 +32,10 @@ _builder.BuildTopDescriptorsAndMessages(DESCRIPTOR, 'kinegate.v1.verdict_pb2', _
 if not _descriptor._USE_C_DESCRIPTORS:
   _globals['DESCRIPTOR']._loaded_options = None
   _globals['DESCRIPTOR']._serialized_options = b'Z1example.org/kinegate/proto/kinegate/v1;kinegatev1'
-  _globals['_EVENTSTATUS']._serialized_start=697
-  _globals['_EVENTSTATUS']._serialized_end=977
-  _globals['_ENTRYSTATUS']._serialized_start=979
-  _globals['_ENTRYSTATUS']._serialized_end=1076
+  _globals['_EVENTSTATUS']._serialized_start=928
+  _globals['_EVENTSTATUS']._serialized_end=1208
+  _globals['_ENTRYSTATUS']._serialized_start=1210
+  _globals['_ENTRYSTATUS']._serialized_end=1336
   _globals['_VERDICTBLOCK']._serialized_start=43
   _globals['_VERDICTBLOCK']._serialized_end=329
   _globals['_REJECTION']._serialized_start=331
@@ -45,5 +45,7 @@ if not _descriptor._USE_C_DESCRIPTORS:
   _globals['_GROUPBEST']._serialized_start=428
   _globals['_GROUPBEST']._serialized_end=453
   _globals['_ENTRYCOLUMNS']._serialized_start=456
-  _globals['_ENTRYCOLUMNS']._serialized_end=694
+  _globals['_ENTRYCOLUMNS']._serialized_end=801
+  _globals['_FITCOLUMNS']._serialized_start=803
+  _globals['_FITCOLUMNS']._serialized_end=925
 # @@protoc_insertion_point(module_scope)

@@ -24,6 +24,7 @@ class EntryStatus(int, metaclass=_enum_type_wrapper.EnumTypeWrapper):
     ENTRY_STATUS_UNSPECIFIED: _ClassVar[EntryStatus]
     ENTRY_STATUS_ACCEPTED: _ClassVar[EntryStatus]
     ENTRY_STATUS_REJECTED: _ClassVar[EntryStatus]
+    ENTRY_STATUS_FIT_FAILED: _ClassVar[EntryStatus]
 EVENT_STATUS_UNSPECIFIED: EventStatus
 EVENT_STATUS_JUDGED: EventStatus
 EVENT_STATUS_NON_FINITE: EventStatus
@@ -36,6 +37,7 @@ EVENT_STATUS_BUDGET_USED: EventStatus
 ENTRY_STATUS_UNSPECIFIED: EntryStatus
 ENTRY_STATUS_ACCEPTED: EntryStatus
 ENTRY_STATUS_REJECTED: EntryStatus
+ENTRY_STATUS_FIT_FAILED: EntryStatus
 
 class VerdictBlock(_message.Message):
     __slots__ = ("sequence", "rejected", "selection_digest", "event_count", "statuses", "gate", "hypotheses", "groups", "entries")
@@ -82,7 +84,7 @@ class GroupBest(_message.Message):
     def __init__(self, best: _Optional[bytes] = ...) -> None: ...
 
 class EntryColumns(_message.Message):
-    __slots__ = ("offsets", "hypothesis_indices", "beam_rows", "weights", "statuses", "assignments_tried", "assignment_offsets", "assignments", "observable_offsets", "observables")
+    __slots__ = ("offsets", "hypothesis_indices", "beam_rows", "weights", "statuses", "assignments_tried", "assignment_offsets", "assignments", "observable_offsets", "observables", "observable_uncertainties", "fits")
     OFFSETS_FIELD_NUMBER: _ClassVar[int]
     HYPOTHESIS_INDICES_FIELD_NUMBER: _ClassVar[int]
     BEAM_ROWS_FIELD_NUMBER: _ClassVar[int]
@@ -93,6 +95,8 @@ class EntryColumns(_message.Message):
     ASSIGNMENTS_FIELD_NUMBER: _ClassVar[int]
     OBSERVABLE_OFFSETS_FIELD_NUMBER: _ClassVar[int]
     OBSERVABLES_FIELD_NUMBER: _ClassVar[int]
+    OBSERVABLE_UNCERTAINTIES_FIELD_NUMBER: _ClassVar[int]
+    FITS_FIELD_NUMBER: _ClassVar[int]
     offsets: bytes
     hypothesis_indices: bytes
     beam_rows: bytes
@@ -103,4 +107,20 @@ class EntryColumns(_message.Message):
     assignments: bytes
     observable_offsets: bytes
     observables: bytes
-    def __init__(self, offsets: _Optional[bytes] = ..., hypothesis_indices: _Optional[bytes] = ..., beam_rows: _Optional[bytes] = ..., weights: _Optional[bytes] = ..., statuses: _Optional[bytes] = ..., assignments_tried: _Optional[bytes] = ..., assignment_offsets: _Optional[bytes] = ..., assignments: _Optional[bytes] = ..., observable_offsets: _Optional[bytes] = ..., observables: _Optional[bytes] = ...) -> None: ...
+    observable_uncertainties: bytes
+    fits: FitColumns
+    def __init__(self, offsets: _Optional[bytes] = ..., hypothesis_indices: _Optional[bytes] = ..., beam_rows: _Optional[bytes] = ..., weights: _Optional[bytes] = ..., statuses: _Optional[bytes] = ..., assignments_tried: _Optional[bytes] = ..., assignment_offsets: _Optional[bytes] = ..., assignments: _Optional[bytes] = ..., observable_offsets: _Optional[bytes] = ..., observables: _Optional[bytes] = ..., observable_uncertainties: _Optional[bytes] = ..., fits: _Optional[_Union[FitColumns, _Mapping]] = ...) -> None: ...
+
+class FitColumns(_message.Message):
+    __slots__ = ("statuses", "chi_squares", "degrees_of_freedom", "probabilities", "iterations")
+    STATUSES_FIELD_NUMBER: _ClassVar[int]
+    CHI_SQUARES_FIELD_NUMBER: _ClassVar[int]
+    DEGREES_OF_FREEDOM_FIELD_NUMBER: _ClassVar[int]
+    PROBABILITIES_FIELD_NUMBER: _ClassVar[int]
+    ITERATIONS_FIELD_NUMBER: _ClassVar[int]
+    statuses: bytes
+    chi_squares: bytes
+    degrees_of_freedom: bytes
+    probabilities: bytes
+    iterations: bytes
+    def __init__(self, statuses: _Optional[bytes] = ..., chi_squares: _Optional[bytes] = ..., degrees_of_freedom: _Optional[bytes] = ..., probabilities: _Optional[bytes] = ..., iterations: _Optional[bytes] = ...) -> None: ...
