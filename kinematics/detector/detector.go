@@ -33,13 +33,13 @@ type Labels struct {
 // Their memory is kept between calls, and apart from it each call allocates a
 // fixed amount. The block is valid for at most event.MaxEvents events.
 func (d *Detector) Measure(truth *event.Truth, block *event.Block, labels *Labels) {
-	w := worker{config: &d.config}
+	w := worker{config: &d.config, stream: random.New(d.config.Seed, random.Detection, 0)}
 	d.reset(block)
 	if labels != nil {
 		labels.Particle = labels.Particle[:0]
 	}
 	for i, id := range truth.EventIDs {
-		w.stream = random.New(d.config.Seed, random.Detection, id)
+		w.stream.Start(id)
 		w.measure(truth, i)
 		block.EventIDs = append(block.EventIDs, id)
 		for k := range w.objects {

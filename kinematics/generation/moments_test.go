@@ -40,11 +40,11 @@ func TestChecksGeneratorMoments(t *testing.T) {
 func averaged(ps *PhaseSpace, m float64, points int, ends bool, of func(*PhaseSpace) float64) float64 {
 	x, w := legendre(points)
 	weights, products := 0.0, 0.0
-	u := make([]float64, ps.n-2)
+	u := ps.uniform[:ps.n-2]
 	var sum func(k int, above, measure float64)
 	sum = func(k int, above, measure float64) {
 		if k < 0 {
-			v := measure * ps.masses(u, m)
+			v := measure * ps.masses(m)
 			weights += v
 			products += v * of(ps)
 			return

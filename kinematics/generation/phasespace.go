@@ -33,13 +33,19 @@ const MaxBodies = 12
 // A PhaseSpace carries its working memory, so each goroutine needs its own.
 type PhaseSpace struct {
 	n int
-	// mass of particle k, and sum of the masses 0 to k.
-	mass, sum [MaxBodies]float64
-	// rest is the mass of particles 0 to k together and inverse its inverse;
-	// split and energy are the momentum and the energy of particle k against
-	// particles 0 to k-1 in their common rest frame.
-	rest, inverse, split, energy [MaxBodies]float64
-	constant                     float64
+	// mass of particle k, its square, and the sum of the masses 0 to k.
+	mass, square, sum [MaxBodies]float64
+	// rest is the mass of particles 0 to k together and inverse its inverse; split
+	// is the momentum of particle k against particles 0 to k-1 in their common rest
+	// frame, and share its energy there over the rest's mass.
+	rest, inverse, split, share [MaxBodies]float64
+	constant                    float64
+	// uniform, sorted and directed are working memory of a point: its random
+	// numbers, the bits of those that give the masses in rising order, and the
+	// momentum of each split.
+	uniform  [3 * MaxBodies]float64
+	sorted   [MaxBodies]uint64
+	directed [MaxBodies]momentum.Three
 }
 
 // NewPhaseSpace returns the phase space of particles with the given masses in
@@ -73,7 +79,7 @@ func (ps *PhaseSpace) setMasses(masses []float64) {
 	sum := 0.0
 	for k, m := range masses {
 		sum += m
-		ps.mass[k], ps.sum[k] = m, sum
+		ps.mass[k], ps.square[k], ps.sum[k] = m, m*m, sum
 	}
 	ps.rest[0] = ps.mass[0]
 }
@@ -86,12 +92,12 @@ func (ps *PhaseSpace) setMasses(masses []float64) {
 // Accuracy: every momentum is on its mass shell to 4 x 2^-53 E^2, and the sums
 // are those of the total to 2n x 2^-52 of the largest energy.
 func (ps *PhaseSpace) Draw(s *random.Stream, total momentum.Four, m float64, out []momentum.Four) float64 {
-	var u [3 * MaxBodies]float64
 	n := ps.n
-	s.Uniforms(u[:3*n-4])
-	w := ps.masses(u[:n-2], m)
+	s.Uniforms(ps.uniform[:3*n-4])
+	w := ps.masses(m)
 	if w > 0 {
-		ps.place(u[n-2:3*n-4], total, m, out, nil)
+		ps.direct(n-2, n-1)
+		ps.place(total, m, out)
 	}
 	return w
 }
@@ -99,47 +105,52 @@ func (ps *PhaseSpace) Draw(s *random.Stream, total momentum.Four, m float64, out
 // drawMasses draws the masses of the rests for a total mass m and returns the
 // weight.
 func (ps *PhaseSpace) drawMasses(s *random.Stream, m float64) float64 {
-	var u [MaxBodies]float64
-	s.Uniforms(u[:ps.n-2])
-	return ps.masses(u[:ps.n-2], m)
+	s.Uniforms(ps.uniform[:ps.n-2])
+	return ps.masses(m)
 }
 
-// masses sets the masses of the rests from n-2 uniform numbers and returns the
-// weight.
-func (ps *PhaseSpace) masses(u []float64, m float64) float64 {
+// masses sets the masses of the rests from the first n-2 uniform numbers and
+// returns the weight.
+func (ps *PhaseSpace) masses(m float64) float64 {
 	n := ps.n
-	t := m - ps.sum[n-1]
-	var r [MaxBodies]float64
-	for k, v := range u { // sorted by insertion
-		i := k + 1
-		for i > 1 && r[i-1] > v {
-			r[i] = r[i-1]
-			i--
-		}
-		r[i] = v
+	if n < 2 || n > MaxBodies {
+		return 0 // never, but then the compiler checks no index of the loops
 	}
+	t := m - ps.sum[n-1]
 	if !(t > 0) {
 		return 0
 	}
-	r[n-1] = 1
+	r := &ps.sorted
+	for k := 1; k < n-1; k++ {
+		// Sorted by insertion, as bits: those of positive numbers are in the same
+		// order, and choosing the lesser needs no branch.
+		v := math.Float64bits(ps.uniform[k-1])
+		for i := 1; i < k; i++ {
+			v, r[i] = max(v, r[i]), min(v, r[i])
+		}
+		r[k] = v
+	}
+	r[n-1] = math.Float64bits(1)
 	w := ps.constant
-	below := ps.mass[0]
+	below, last := ps.mass[0], 0.0
 	for k := 1; k < n; k++ {
 		// The excess of each split is its own quantity, never a difference of
 		// masses that both hold the sums.
-		q := float64((r[k] - r[k-1]) * t)
+		share := math.Float64frombits(r[k])
+		q := float64((share - last) * t)
+		last = share
 		whole, mass := m, ps.mass[k]
 		if k < n-1 {
-			whole = ps.sum[k] + float64(r[k]*t)
+			whole = ps.sum[k] + float64(share*t)
 			w *= t
 		}
-		// splitMomentum, and m_k + q (q + 2 M_(k-1))/(2 M_k), with one division,
+		// splitMomentum, and e_k = m_k + q (q + 2 M_(k-1))/(2 M_k), with one division,
 		// which the boosts use again: divisions and roots are what this costs.
 		inverse := 1 / whole
 		half := 0.5 * inverse
 		p := math.Sqrt(q*(q+(mass+mass))*(q+(below+below))*(whole+below+mass)) * half
 		ps.rest[k], ps.inverse[k], ps.split[k] = whole, inverse, p
-		ps.energy[k] = mass + float64(q*(q+(below+below))*half)
+		ps.share[k] = (mass + float64(q*(q+(below+below))*half)) * inverse
 		below = whole
 		w *= p
 	}
@@ -174,61 +185,61 @@ func (ps *PhaseSpace) ceiling(m float64) float64 {
 	return w
 }
 
-// drawPlaces draws directions and places the particles.
+// drawPlaces draws directions and places the particles. Where first is given it
+// is the direction of the last particle in the total's rest frame.
 func (ps *PhaseSpace) drawPlaces(s *random.Stream, total momentum.Four, m float64, out []momentum.Four, first *momentum.Three) {
-	var u [2 * MaxBodies]float64
 	splits := ps.n - 1
 	if first != nil {
 		splits--
+		ps.directed[splits+1] = first.Scale(ps.split[splits+1])
 	}
-	s.Uniforms(u[:2*splits])
-	ps.place(u[:2*splits], total, m, out, first)
+	s.Uniforms(ps.uniform[:2*splits])
+	ps.direct(0, splits)
+	ps.place(total, m, out)
 }
 
-// place writes the four-momenta for the masses set before, in the directions
-// that two uniform numbers a split give. Where first is given it is the
-// direction of the last particle in the total's rest frame.
-func (ps *PhaseSpace) place(u []float64, total momentum.Four, m float64, out []momentum.Four, first *momentum.Three) {
+// direct gives the momenta of the first splits a random direction each, from two
+// uniform numbers a split.
+func (ps *PhaseSpace) direct(from, splits int) {
+	u := ps.uniform[from : from+2*splits]
+	for k := 1; k <= splits && k < MaxBodies; k++ {
+		sin, cos := num.SincosTurn(u[2*k-1])
+		ps.directed[k] = onSphere(u[2*k-2], sin, cos, ps.split[k])
+	}
+}
+
+// place writes the four-momenta for the masses and directions set before.
+func (ps *PhaseSpace) place(total momentum.Four, m float64, out []momentum.Four) {
 	last := ps.n - 1
-	var directed [MaxBodies]momentum.Three
-	direct(u, &ps.split, &directed)
-	if first != nil {
-		directed[last] = first.Scale(ps.split[last])
+	if last >= MaxBodies || last >= len(out) {
+		return // never, but then the compiler checks no index of the loop
 	}
 	px, py, pz, e := total.P.X, total.P.Y, total.P.Z, total.E
 	for k := last; k > 0; k-- {
-		q, mass, es, inverse := &directed[k], ps.mass[k], ps.energy[k], ps.inverse[k]
-		// Boost of q with the energy es along the total's own motion:
-		// q + P ((P.q)/(E + M) + es)/M, and its energy (E es + P.q)/M.
+		q, share, inverse := &ps.directed[k], ps.share[k], ps.inverse[k]
+		// Boost of q with the energy e_k along the total's own motion,
+		// q + P ((P.q)/(E + M) + e_k)/M, and its energy (E e_k + P.q)/M. The division
+		// does not wait for P.q.
 		along := float64(px*q.X) + float64(py*q.Y) + float64(pz*q.Z)
-		f := (along/(e+m) + es) * inverse
+		f := float64(along*(inverse/(e+m))) + share
 		x, y, z := q.X+float64(px*f), q.Y+float64(py*f), q.Z+float64(pz*f)
 		out[k] = momentum.Four{
 			P: momentum.Three{X: x, Y: y, Z: z},
-			E: shell(x, y, z, mass),
+			E: shell(x, y, z, ps.square[k]),
 		}
 		// The rest takes what is left, so that momentum is conserved to the last
 		// bit of the larger term. Its energy serves the next boost alone, which
 		// forgives the rounding of this difference: it is that of the total.
 		px, py, pz = px-x, py-y, pz-z
-		e -= float64((float64(e*es) + along) * inverse)
+		e -= float64(e*share) + float64(along*inverse)
 		m = ps.rest[k-1]
 	}
-	out[0] = momentum.Four{P: momentum.Three{X: px, Y: py, Z: pz}, E: shell(px, py, pz, ps.mass[0])}
+	out[0] = momentum.Four{P: momentum.Three{X: px, Y: py, Z: pz}, E: shell(px, py, pz, ps.square[0])}
 }
 
-// shell is the energy of a momentum on the shell of mass m.
-func shell(x, y, z, m float64) float64 {
-	return math.Sqrt(float64(x*x) + float64(y*y) + (float64(z*z) + float64(m*m)))
-}
-
-// direct gives the momenta of the splits a random direction each. It is apart
-// from place so that fewer values have to be saved around the sines.
-func direct(u []float64, split *[MaxBodies]float64, directed *[MaxBodies]momentum.Three) {
-	for k := 1; k < MaxBodies && 2*k <= len(u); k++ {
-		sin, cos := num.SincosTurn(u[2*k-1])
-		directed[k] = onSphere(u[2*k-2], sin, cos, split[k])
-	}
+// shell is the energy of a momentum on the shell of a squared mass.
+func shell(x, y, z, square float64) float64 {
+	return math.Sqrt(float64(x*x) + float64(y*y) + (float64(z*z) + square))
 }
 
 // isotropic is the vector of length p in the direction that two uniform numbers

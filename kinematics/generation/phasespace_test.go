@@ -207,9 +207,10 @@ func BenchmarkPhaseSpace(b *testing.B) {
 			out := make([]momentum.Four, n)
 			m := 0.5 + 0.14*float64(n)
 			event := int64(0)
+			s := random.New(1, random.Generation, 0)
 			b.ReportAllocs()
 			for b.Loop() {
-				s := random.New(1, random.Generation, event)
+				s.Start(event)
 				event++
 				sinkWeight += ps.Draw(&s, momentum.Four{E: m}, m, out)
 			}

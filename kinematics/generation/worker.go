@@ -21,7 +21,10 @@ type Worker struct {
 
 	generator *Generator
 	stats     Stats
-	stream    random.Stream
+	// events and points are the streams of events and of measured bounds, stream
+	// is the one in use.
+	events, points random.Stream
+	stream         *random.Stream
 	// all holds the phase spaces of every channel: the reaction's, then those of
 	// the decays in the order of the nodes.
 	all [][]PhaseSpace
@@ -31,12 +34,17 @@ type Worker struct {
 	state   state
 	masses  []float64
 	momenta []momentum.Four
-	points  [MaxBodies]momentum.Four
+	made    [MaxBodies]momentum.Four
 }
 
 // NewWorker returns a worker.
 func (g *Generator) NewWorker() *Worker {
-	w := &Worker{generator: g}
+	w := &Worker{
+		generator: g,
+		events:    random.New(g.config.Seed, random.Generation, 0),
+		points:    random.New(g.config.Seed, random.Bounds, 0),
+	}
+	w.stream = &w.events
 	largest := 0
 	for _, p := range g.plans {
 		spaces := []PhaseSpace{p.root.lowest}
@@ -60,7 +68,8 @@ func (g *Generator) NewWorker() *Worker {
 func (w *Worker) Fraction(channel int, i int64) float64 {
 	g := w.generator
 	w.plan, w.spaces = g.plans[channel], w.all[channel]
-	w.stream = random.New(g.config.Seed, random.Bounds, i)
+	w.stream = &w.points
+	w.stream.Start(i)
 	return w.fraction()
 }
 
@@ -80,7 +89,8 @@ func (w *Worker) stopped(draw int) bool {
 // ages in text order.
 func (w *Worker) Event(id int64, truth *event.Truth) {
 	g := w.generator
-	w.stream = random.New(g.config.Seed, random.Generation, id)
+	w.stream = &w.events
+	w.stream.Start(id)
 	channel := 0
 	if g.mixture != nil {
 		channel, _ = choose(g.mixture, w.stream.Uniform())
@@ -146,7 +156,7 @@ func (w *Worker) accidentals(truth *event.Truth) {
 		return
 	}
 	for range w.stream.Poisson(expected) {
-		truth.BeamEnergyGeV = append(truth.BeamEnergyGeV, w.generator.source.energy(&w.stream))
+		truth.BeamEnergyGeV = append(truth.BeamEnergyGeV, w.generator.source.energy(w.stream))
 		truth.BeamTimeNS = append(truth.BeamTimeNS, a.WindowNS*(w.stream.Uniform()-0.5))
 	}
 }
@@ -206,7 +216,7 @@ func (w *Worker) energy() bool {
 		if w.stopped(draw) {
 			return false
 		}
-		w.state = w.generator.source.draw(&w.stream)
+		w.state = w.generator.source.draw(w.stream)
 		if !(w.state.m > w.plan.threshold) {
 			continue
 		}
@@ -228,7 +238,7 @@ func (w *Worker) fraction() float64 {
 		}
 		return w.drawProducts() / w.plan.root.ceiling(w.plan.nodes, w.state.m)
 	}
-	w.state = w.generator.source.draw(&w.stream)
+	w.state = w.generator.source.draw(w.stream)
 	if !(w.state.m > w.plan.threshold) {
 		return 0
 	}
@@ -240,7 +250,7 @@ func (w *Worker) fraction() float64 {
 // given rate over a spread of energies divided by the mean weight at this
 // energy, so that the mean weight is the rate.
 func (w *Worker) weighted() float64 {
-	w.state = w.generator.source.draw(&w.stream)
+	w.state = w.generator.source.draw(w.stream)
 	p := w.plan
 	if !(w.state.m > p.threshold) {
 		return 0
@@ -264,7 +274,7 @@ func (w *Worker) weighted() float64 {
 // weight.
 func (w *Worker) drawProducts() float64 {
 	p := w.plan
-	weight := p.root.draw(&w.stream, p.nodes, w.state.m, w.masses, &w.spaces[0])
+	weight := p.root.draw(w.stream, p.nodes, w.state.m, w.masses, &w.spaces[0])
 	if p.angle != nil && weight > 0 {
 		if n := len(p.root.rows); n > 2 {
 			weight *= p.angle.acceptance(w.state.momentum, w.spaces[0].split[n-1])
@@ -281,10 +291,10 @@ func (w *Worker) decay() bool {
 	var first *momentum.Three
 	var direction momentum.Three
 	if p.angle != nil {
-		direction = p.angle.direction(&w.stream, &w.state, ps.split[ps.n-1])
+		direction = p.angle.direction(w.stream, &w.state, ps.split[ps.n-1])
 		first = &direction
 	}
-	ps.drawPlaces(&w.stream, w.state.total, w.state.m, w.points[:], first)
+	ps.drawPlaces(w.stream, w.state.total, w.state.m, w.made[:], first)
 	w.store(p.root)
 	next := 1
 	for i := range p.nodes {
@@ -301,7 +311,7 @@ func (w *Worker) decay() bool {
 // store moves the points of a group to their rows.
 func (w *Worker) store(g *group) {
 	for k, row := range g.rows {
-		w.momenta[row] = w.points[k]
+		w.momenta[row] = w.made[k]
 	}
 }
 
@@ -323,7 +333,7 @@ func (w *Worker) decayOf(row int, g *group, ps *PhaseSpace) bool {
 		direction = around(w.helicityAxis(row), cos, math.Sqrt((1-cos)*(1+cos)), phi)
 		first = &direction
 	}
-	ps.drawPlaces(&w.stream, w.momenta[row], m, w.points[:], first)
+	ps.drawPlaces(w.stream, w.momenta[row], m, w.made[:], first)
 	w.store(g)
 	return true
 }
@@ -339,7 +349,7 @@ func (w *Worker) shapedDecay(row int, g *group, ps *PhaseSpace) bool {
 		if !w.redraw(g, ps, m) {
 			return false
 		}
-		ps.drawPlaces(&w.stream, momentum.Four{E: m}, m, w.points[:], nil)
+		ps.drawPlaces(w.stream, momentum.Four{E: m}, m, w.made[:], nil)
 		w.store(g)
 		var daughters [MaxBodies]momentum.Four
 		for k, r := range g.text {
@@ -359,14 +369,14 @@ func (w *Worker) shapedDecay(row int, g *group, ps *PhaseSpace) bool {
 // redraw draws the masses of a decay's daughters until they are accepted.
 func (w *Worker) redraw(g *group, ps *PhaseSpace, m float64) bool {
 	if g.sharp && len(g.rows) == 2 {
-		return ps.drawMasses(&w.stream, m) > 0
+		return ps.drawMasses(w.stream, m) > 0
 	}
 	ceiling := g.ceiling(w.plan.nodes, m)
 	for draw := range MaxAttempts {
 		if w.stopped(draw) {
 			return false
 		}
-		weight := g.draw(&w.stream, w.plan.nodes, m, w.masses, ps)
+		weight := g.draw(w.stream, w.plan.nodes, m, w.masses, ps)
 		if w.stream.Uniform()*ceiling < weight {
 			return true
 		}
@@ -381,7 +391,7 @@ func carry(p momentum.Four, mass float64, body momentum.Four, m float64) momentu
 	x := p.P.X + float64(body.P.X*f)
 	y := p.P.Y + float64(body.P.Y*f)
 	z := p.P.Z + float64(body.P.Z*f)
-	return momentum.Four{P: momentum.Three{X: x, Y: y, Z: z}, E: shell(x, y, z, mass)}
+	return momentum.Four{P: momentum.Three{X: x, Y: y, Z: z}, E: shell(x, y, z, float64(mass*mass))}
 }
 
 // helicityAxis is the direction of a particle in its parent's rest frame, seen

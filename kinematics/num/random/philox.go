@@ -19,23 +19,38 @@ const (
 // Philox returns the four words of Philox4x64 with ten rounds for a counter and
 // a key (the source above, section 3.3). Every counter and key is allowed.
 func Philox(counter [4]uint64, key [2]uint64) [4]uint64 {
-	w0, w1, w2, w3 := rounds(counter[0], counter[1], counter[2], counter[3], key[0], key[1])
+	s := newSchedule(key[0], key[1])
+	w0, w1, w2, w3 := s.rounds(counter[0], counter[1], counter[2], counter[3])
 	return [4]uint64{w0, w1, w2, w3}
 }
 
+// schedule is the keys of the ten rounds, two rounds a row. Made once for a key
+// it spares every counter the additions.
+type schedule [5][4]uint64
+
+func newSchedule(k0, k1 uint64) schedule {
+	var s schedule
+	for i := range s {
+		s[i][0], s[i][1] = k0, k1
+		k0 += increment0
+		k1 += increment1
+		s[i][2], s[i][3] = k0, k1
+		k0 += increment0
+		k1 += increment1
+	}
+	return s
+}
+
 // rounds is Philox with all words in registers.
-func rounds(c0, c1, c2, c3, k0, k1 uint64) (w0, w1, w2, w3 uint64) {
-	for range 5 { // two rounds a turn
+func (s *schedule) rounds(c0, c1, c2, c3 uint64) (w0, w1, w2, w3 uint64) {
+	for i := range s {
+		k := &s[i]
 		hi0, lo0 := bits.Mul64(multiplier0, c0)
 		hi1, lo1 := bits.Mul64(multiplier1, c2)
-		c0, c2 = hi1^c1^k0, hi0^c3^k1
-		k0 += increment0
-		k1 += increment1
+		c0, c2 = hi1^c1^k[0], hi0^c3^k[1]
 		hi2, lo2 := bits.Mul64(multiplier0, c0)
 		hi3, lo3 := bits.Mul64(multiplier1, c2)
-		c0, c1, c2, c3 = hi3^lo1^k0, lo3, hi2^lo0^k1, lo2
-		k0 += increment0
-		k1 += increment1
+		c0, c1, c2, c3 = hi3^lo1^k[2], lo3, hi2^lo0^k[3], lo2
 	}
 	return c0, c1, c2, c3
 }

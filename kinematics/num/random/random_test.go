@@ -211,3 +211,18 @@ func BenchmarkNormal(b *testing.B) {
 		sink = s.Normal()
 	}
 }
+
+// Start gives the same sequence as New, whatever was drawn before.
+func TestStart(t *testing.T) {
+	s := random.New(9, random.Detection, 4)
+	s.Word()
+	for _, event := range []int64{4, 0, -7, math.MaxInt64} {
+		s.Start(event)
+		fresh := random.New(9, random.Detection, event)
+		for range 9 {
+			if got, want := s.Word(), fresh.Word(); got != want {
+				t.Fatalf("event %d: %x, want %x", event, got, want)
+			}
+		}
+	}
+}

@@ -1,6 +1,9 @@
 package random
 
-import "math/bits"
+import (
+	"math"
+	"math/bits"
+)
 
 // Purpose separates the streams of one seed. Its values are frozen: they are
 // part of the key.
@@ -22,7 +25,7 @@ const (
 // counter of draw d is (d/4, event, 0, 0) and its word is d mod 4. A Stream is a
 // value; copying it forks the sequence.
 type Stream struct {
-	key     [2]uint64
+	keys    schedule
 	event   uint64
 	block   uint64
 	pending int
@@ -31,7 +34,13 @@ type Stream struct {
 
 // New returns the stream of an event.
 func New(seed uint64, purpose Purpose, event int64) Stream {
-	return Stream{key: [2]uint64{seed, uint64(purpose)}, event: uint64(event)} //nolint:gosec // the bits of the id
+	return Stream{keys: newSchedule(seed, uint64(purpose)), event: uint64(event)} //nolint:gosec // the bits of the id
+}
+
+// Start begins the sequence of another event with the seed and the purpose of s,
+// the same sequence as that of New, in less time.
+func (s *Stream) Start(event int64) {
+	s.event, s.block, s.pending = uint64(event), 0, 0 //nolint:gosec // the bits of the id
 }
 
 // Draws is the number of words drawn so far.
@@ -47,7 +56,7 @@ func (s *Stream) Word() uint64 {
 }
 
 func (s *Stream) refill() {
-	s.words[0], s.words[1], s.words[2], s.words[3] = rounds(s.block, s.event, 0, 0, s.key[0], s.key[1])
+	s.words[0], s.words[1], s.words[2], s.words[3] = s.keys.rounds(s.block, s.event, 0, 0)
 	s.block++
 	s.pending = 4
 }
@@ -56,7 +65,7 @@ func (s *Stream) refill() {
 // the 2^52 values (k + 1/2) 2^-52: exact, symmetric about 1/2, and neither end
 // is ever reached. (With one bit more the largest k + 1/2 would round to 1.)
 func (s *Stream) Uniform() float64 {
-	return float64((float64(s.Word()>>12) + 0.5) * (1.0 / (1 << 52)))
+	return fraction(s.Word())
 }
 
 // Uniforms fills u with what as many calls of Uniform would return, faster.
@@ -66,7 +75,7 @@ func (s *Stream) Uniforms(u []float64) {
 		u = u[1:]
 	}
 	for len(u) >= 4 {
-		w0, w1, w2, w3 := rounds(s.block, s.event, 0, 0, s.key[0], s.key[1])
+		w0, w1, w2, w3 := s.keys.rounds(s.block, s.event, 0, 0)
 		s.block++
 		u[0], u[1], u[2], u[3] = fraction(w0), fraction(w1), fraction(w2), fraction(w3)
 		u = u[4:]
@@ -76,10 +85,10 @@ func (s *Stream) Uniforms(u []float64) {
 	}
 }
 
-// fraction is the uniform double of a word. The conversion of a signed number is
-// one instruction, that of an unsigned one is several.
+// fraction is the uniform double of a word: its upper 52 bits behind the point of
+// 1.xxx make 1 + k 2^-52, and taking 1 - 2^-53 away is exact.
 func fraction(word uint64) float64 {
-	return (float64(int64(word>>12)) + 0.5) * (1.0 / (1 << 52))
+	return math.Float64frombits(0x3FF<<52|word>>12) - (1 - 0x1p-53)
 }
 
 // Below returns a whole number k, 0 <= k < n, from one word: the high half of
