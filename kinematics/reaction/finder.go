@@ -105,7 +105,7 @@ func (f *finder) find(bodies int) bool {
 
 // step counts one set looked at; it is false when the work is too much or is stopped.
 func (f *finder) step() bool {
-	const between = 1 << 16 // far less than a millisecond
+	const between = 1 << 13 // some tens of microseconds
 	f.steps++
 	stop := f.channels.search.Stop
 	return f.steps <= maxSteps && (stop == nil || f.steps%between != 0 || !stop())

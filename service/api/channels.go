@@ -36,9 +36,11 @@ func (s *reactionService) ListOpenChannels(
 	if err != nil {
 		return nil, err
 	}
+	work := s.turns.begin(ctx)
+	defer work.end()
 	channels := s.last.get(binding)
 	if channels == nil {
-		search.Stop = func() bool { return ctx.Err() != nil }
+		search.Stop = work.stop
 		if channels, err = reaction.ListOpen(s.table, search); err != nil {
 			return nil, form.describeFailure(err)
 		}
@@ -63,7 +65,7 @@ func (s *reactionService) ListOpenChannels(
 	}
 	to := min(from+size, channels.Len())
 	for i := from; i < to; i++ {
-		if i%chunk == 0 && ctx.Err() != nil {
+		if work.stop() {
 			return nil, ctx.Err()
 		}
 		channel := channels.At(i)

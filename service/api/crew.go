@@ -87,6 +87,8 @@ func (c *crew) judge(ctx context.Context, block *event.Block, late func() bool, 
 // lead judges turns until there are no more. As long as all turns were its own, their
 // verdicts go straight to out; it returns how many did.
 func (j *job) lead(ctx context.Context, w *selection.Worker) (own int, err error) {
+	s := j.spell(ctx, w)
+	defer s.end()
 	for {
 		turn, more := j.claim()
 		if !more {
@@ -99,41 +101,42 @@ func (j *job) lead(ctx context.Context, w *selection.Worker) (own int, err error
 			out = &j.parts[turn]
 			w.Reset(out)
 		}
-		if err := j.queued(ctx, w, turn, out); err != nil {
+		if err := s.take(); err != nil {
+			return own, err
+		}
+		j.turn(w, turn, out)
+		s.end()
+		if err := ctx.Err(); err != nil {
 			return own, err
 		}
 	}
 }
 
-// queued judges a turn after waiting for it.
-func (j *job) queued(ctx context.Context, w *selection.Worker, turn int, out *event.VerdictBlock) error {
-	if err := j.turns.take(ctx); err != nil {
-		return err
-	}
-	defer j.turns.giveBack()
-	j.turn(ctx, w, turn, out)
-	return ctx.Err()
+// spell is the work of one member on the job. One event may have many assignments, so
+// the member looks up within it too.
+func (j *job) spell(ctx context.Context, w *selection.Worker) *spell {
+	s := j.turns.begin(ctx)
+	w.Stop = func() bool { return s.stop() || j.late() }
+	return s
 }
 
 // help judges turns, the first of which was taken already, as long as turns are free.
 func (j *job) help(ctx context.Context, w *selection.Worker) {
-	held := true
-	defer func() {
-		if held {
-			j.turns.giveBack()
-		}
-	}()
+	s := j.spell(ctx, w)
+	s.hold()
+	defer s.end()
 	for ctx.Err() == nil {
 		turn, more := j.claim()
 		if !more {
 			return
 		}
 		w.Reset(&j.parts[turn])
-		j.turn(ctx, w, turn, &j.parts[turn])
-		j.turns.giveBack()
-		if held = j.turns.try(); !held {
+		j.turn(w, turn, &j.parts[turn])
+		s.end()
+		if !j.turns.try() {
 			return
 		}
+		s.hold()
 	}
 }
 
@@ -144,20 +147,12 @@ func (j *job) claim() (turn int, more bool) {
 }
 
 // turn appends the verdicts of one turn to out.
-func (j *job) turn(ctx context.Context, w *selection.Worker, turn int, out *event.VerdictBlock) {
+func (j *job) turn(w *selection.Worker, turn int, out *event.VerdictBlock) {
 	from := turn * eventsPerTurn
 	to := min(from+eventsPerTurn, j.block.Events())
 	if j.late() {
 		w.Expire(to-from, out)
 		return
-	}
-	var pace pace
-	// One event may have many assignments, so the worker looks up within it too.
-	w.Stop = func() bool {
-		if j.turns.yields {
-			pace.rest()
-		}
-		return ctx.Err() != nil || j.late()
 	}
 	done := from + w.Judge(j.block, from, to, out)
 	w.Expire(to-done, out)

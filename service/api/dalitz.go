@@ -51,9 +51,11 @@ func (s *decayService) TraceDalitzBoundary(
 		m.Products = append(m.Products, r.Products[number].Name)
 	}
 	points := 0
+	work := s.turns.begin(ctx)
+	defer work.end()
 	for i := range channels {
-		if err := ctx.Err(); err != nil {
-			return nil, err
+		if work.stop() {
+			return nil, ctx.Err()
 		}
 		boundary, err := boundaryMessage(&channels[i], [dalitzBodies]float64(m.GetMassesGev()), bands, resolution)
 		if err != nil {

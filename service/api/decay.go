@@ -28,6 +28,7 @@ type decayService struct {
 	kinegatev1.UnsafeDecayServiceServer
 
 	table *particle.Table
+	turns *turns
 }
 
 // DescribeDecay describes a decay.

@@ -76,7 +76,7 @@ func (s *generationService) header(
 // Draws of MeasureBound.
 const (
 	defaultDraws, maxDraws = 100_000, 10_000_000
-	drawsPerTurn           = 256
+	drawsPerLook           = 16
 )
 
 // MeasureBound measures the weights of a channel.
@@ -100,18 +100,17 @@ func (s *generationService) MeasureBound(
 	}
 	response := &kinegatev1.MeasureBoundResponse{DrawCount: draws}
 	w := c.generator.NewWorker()
-	w.Stop = func() bool { return ctx.Err() != nil }
+	work := s.turns.begin(ctx)
+	defer work.end()
+	w.Stop = work.stop
 	sum := 0.0
-	for i := int64(0); i < draws; {
-		if err := s.turns.take(ctx); err != nil {
-			return nil, err
+	for i := range draws {
+		if i%drawsPerLook == 0 && work.stop() {
+			break
 		}
-		for end := min(i+drawsPerTurn, draws); i < end; i++ {
-			x := w.Fraction(channel, i)
-			response.Largest = max(response.GetLargest(), x)
-			sum += x
-		}
-		s.turns.giveBack()
+		x := w.Fraction(channel, i)
+		response.Largest = max(response.GetLargest(), x)
+		sum += x
 	}
 	response.Mean = sum / float64(draws)
 	return response, ctx.Err()

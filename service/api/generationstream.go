@@ -35,10 +35,7 @@ type generationStream struct {
 	perBlock  int
 	truthless bool
 	lastSent  time.Time
-	pace      pace
-	// turning tells that the stream has a turn, and turnBegun since when.
-	turning   bool
-	turnBegun time.Time
+	work      *spell
 	seen      int64
 
 	// of the block being made
@@ -62,27 +59,11 @@ func newGenerationStream(
 	if g.perBlock == 0 {
 		g.perBlock = event.MaxEvents
 	}
-	g.worker.Stop = g.stop
+	g.work = s.turns.begin(stream.Context())
+	// One event with a bound far too high takes a tenth of a second and more.
+	g.worker.Stop = g.work.stop
 	return g
 }
-
-// stop looks up within an event: one with a bound far too high takes a tenth of a second
-// and more, and others wait for its turn.
-func (g *generationStream) stop() bool {
-	ctx, turns := g.stream.Context(), g.service.turns
-	if turns.yields {
-		g.pace.rest()
-	}
-	if g.turning && time.Since(g.turnBegun) > longestTurn {
-		turns.giveBack()
-		g.turning = turns.take(ctx) == nil
-		g.turnBegun = time.Now()
-	}
-	return !g.turning || ctx.Err() != nil
-}
-
-// longestTurn is how long an event keeps a turn while others may wait for it.
-const longestTurn = 2 * time.Millisecond
 
 // run sends the header, the blocks and the summary. Nothing is made ahead of what the
 // caller takes: sending waits for room.
@@ -147,16 +128,10 @@ func (g *generationStream) leave() error {
 
 // turn makes a few events after waiting for its turn, and returns the size of the block.
 func (g *generationStream) turn(ctx context.Context, size int) (grown int, full bool, err error) {
-	turns := g.service.turns
-	if err := turns.take(ctx); err != nil {
+	if err := g.work.take(); err != nil {
 		return size, false, err
 	}
-	g.turning, g.turnBegun = true, time.Now()
-	defer func() {
-		if g.turning {
-			turns.giveBack()
-		}
-	}()
+	defer g.work.end()
 	for range generatedPerTurn {
 		g.worker.Event(g.next, &g.truth)
 		if err := ctx.Err(); err != nil {

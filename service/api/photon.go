@@ -21,6 +21,7 @@ type photonService struct {
 	kinegatev1.UnsafePhotonServiceServer
 
 	table *particle.Table
+	turns *turns
 }
 
 // DescribePhotonProcess describes one process.
@@ -28,16 +29,18 @@ func (s *photonService) DescribePhotonProcess(
 	ctx context.Context, request *kinegatev1.DescribePhotonProcessRequest,
 ) (*kinegatev1.DescribePhotonProcessResponse, error) {
 	m := &kinegatev1.DescribePhotonProcessResponse{TableVersion: s.table.Version()}
+	work := s.turns.begin(ctx)
+	defer work.end()
 	var err error
 	switch process := request.GetProcess().(type) {
 	case *kinegatev1.DescribePhotonProcessRequest_PairCreation:
-		err = s.pairCreation(ctx, m, process.PairCreation)
+		err = s.pairCreation(work, m, process.PairCreation)
 	case *kinegatev1.DescribePhotonProcessRequest_Compton:
-		err = s.compton(ctx, m, process.Compton)
+		err = s.compton(work, m, process.Compton)
 	case *kinegatev1.DescribePhotonProcessRequest_Backscatter:
-		err = s.backscatter(ctx, m, process.Backscatter)
+		err = s.backscatter(work, m, process.Backscatter)
 	case *kinegatev1.DescribePhotonProcessRequest_Annihilation:
-		err = s.annihilation(ctx, m, process.Annihilation)
+		err = s.annihilation(work, m, process.Annihilation)
 	case *kinegatev1.DescribePhotonProcessRequest_FieldPair:
 		err = s.fieldPair(m, process.FieldPair)
 	default:
@@ -123,19 +126,6 @@ func tooMany(at string, counts ...int) error {
 		return nil
 	}
 	return fault.New(fault.Invalid, at, strconv.Itoa(sum)+" values", "at most "+strconv.Itoa(maxPhotonValues)+" in all lists together")
-}
-
-// each calls do for every index below n and looks at the context now and then.
-func each(ctx context.Context, n int, do func(i int) error) error {
-	for i := range n {
-		if i%chunk == 0 && ctx.Err() != nil {
-			return ctx.Err()
-		}
-		if err := do(i); err != nil {
-			return err
-		}
-	}
-	return nil
 }
 
 // cosinesFault refuses the first number that is no cosine.

@@ -1,7 +1,6 @@
 package api
 
 import (
-	"context"
 	"strconv"
 
 	"example.org/kinegate/kinematics/fault"
@@ -11,7 +10,7 @@ import (
 
 // backscatter answers for a photon beam made by light on a beam of charged leptons.
 func (s *photonService) backscatter(
-	ctx context.Context, m *kinegatev1.DescribePhotonProcessResponse, q *kinegatev1.LaserBackscatter,
+	work *spell, m *kinegatev1.DescribePhotonProcessResponse, q *kinegatev1.LaserBackscatter,
 ) error {
 	const at = "backscatter"
 	p, err := s.lepton(at+".particle", q.GetParticle())
@@ -44,10 +43,10 @@ func (s *photonService) backscatter(
 		"Several laser photons at once: this is linear quantum electrodynamics. Higher orders.",
 		"The spread of beam and light in energy and angle; transverse polarisation of the beam.",
 	}
-	if err := spectrum(ctx, at, a, q, &b); err != nil {
+	if err := spectrum(work, at, a, q, &b); err != nil {
 		return err
 	}
-	if err := each(ctx, len(q.GetAnglesRad()), func(i int) error {
+	if err := work.each(len(q.GetAnglesRad()), func(i int) error {
 		angle := q.GetAnglesRad()[i]
 		energy, err := b.EnergyAt(angle)
 		if err != nil {
@@ -62,7 +61,7 @@ func (s *photonService) backscatter(
 	}); err != nil {
 		return err
 	}
-	return each(ctx, len(q.GetWindows()), func(i int) error {
+	return work.each(len(q.GetWindows()), func(i int) error {
 		window := q.GetWindows()[i]
 		share, err := b.Fraction(window.GetMinGev(), window.GetMaxGev())
 		if err != nil {
@@ -75,10 +74,10 @@ func (s *photonService) backscatter(
 
 // spectrum adds the points of the spectrum: the even energies, then those asked for.
 func spectrum(
-	ctx context.Context, at string, a *kinegatev1.BackscatterAnswer, q *kinegatev1.LaserBackscatter, b *photon.Backscatter,
+	work *spell, at string, a *kinegatev1.BackscatterAnswer, q *kinegatev1.LaserBackscatter, b *photon.Backscatter,
 ) error {
 	even := int(q.GetEvenEnergyCount())
-	return each(ctx, even+len(q.GetEnergiesGev()), func(i int) error {
+	return work.each(even+len(q.GetEnergiesGev()), func(i int) error {
 		path := "even_energy_count"
 		var energy float64
 		if i < even {

@@ -1,7 +1,6 @@
 package api
 
 import (
-	"context"
 	"math"
 
 	"example.org/kinegate/kinematics/fault"
@@ -13,7 +12,7 @@ import (
 
 // compton answers for a photon scattered by a charged lepton.
 func (s *photonService) compton(
-	ctx context.Context, m *kinegatev1.DescribePhotonProcessResponse, q *kinegatev1.ComptonScattering,
+	work *spell, m *kinegatev1.DescribePhotonProcessResponse, q *kinegatev1.ComptonScattering,
 ) error {
 	const at = "compton"
 	p, err := s.lepton(at+".particle", q.GetParticle())
@@ -30,13 +29,13 @@ func (s *photonService) compton(
 		"Polarisation: beams without, final states summed.",
 	}
 	if q.GetFlight() == nil {
-		return comptonAtRest(ctx, at, a, q)
+		return comptonAtRest(work, at, a, q)
 	}
-	return s.comptonInFlight(ctx, at, a, q, &p)
+	return s.comptonInFlight(work, at, a, q, &p)
 }
 
 // comptonAtRest answers for a lepton at rest.
-func comptonAtRest(ctx context.Context, at string, a *kinegatev1.ComptonAnswer, q *kinegatev1.ComptonScattering) error {
+func comptonAtRest(work *spell, at string, a *kinegatev1.ComptonAnswer, q *kinegatev1.ComptonScattering) error {
 	if q.AngleBetweenBeamsRad != nil {
 		return fault.Number(at+".angle_between_beams_rad", q.GetAngleBetweenBeamsRad(), "absent without flight").
 			Because("a lepton at rest has no direction")
@@ -51,7 +50,7 @@ func comptonAtRest(ctx context.Context, at string, a *kinegatev1.ComptonAnswer, 
 		EdgeGev: c.Edge(), BackscatteredGev: c.Backscattered(), MeanScatteredGev: c.MeanScattered(),
 		MeanRecoilGev: c.MeanRecoil(), EnergyTransferBarn: c.TransferBarn(),
 	}
-	if err := each(ctx, len(q.GetDirections()), func(i int) error {
+	if err := work.each(len(q.GetDirections()), func(i int) error {
 		to := q.GetDirections()[i]
 		path := index("directions", i)
 		if to.GetPhiRad() != 0 {
@@ -70,7 +69,7 @@ func comptonAtRest(ctx context.Context, at string, a *kinegatev1.ComptonAnswer, 
 	}); err != nil {
 		return err
 	}
-	return each(ctx, len(q.GetTotalsAtPhotonEnergiesGev()), func(i int) error {
+	return work.each(len(q.GetTotalsAtPhotonEnergiesGev()), func(i int) error {
 		c, err := photon.NewCompton(q.GetTotalsAtPhotonEnergiesGev()[i], a.GetMassGev())
 		if err != nil {
 			return atFields(err, at, map[string]string{corePhotonEnergy: index("totals_at_photon_energies_gev", i)})
@@ -82,7 +81,7 @@ func comptonAtRest(ctx context.Context, at string, a *kinegatev1.ComptonAnswer, 
 
 // comptonInFlight answers for a moving lepton.
 func (s *photonService) comptonInFlight(
-	ctx context.Context, at string, a *kinegatev1.ComptonAnswer, q *kinegatev1.ComptonScattering, p *particle.Particle,
+	work *spell, at string, a *kinegatev1.ComptonAnswer, q *kinegatev1.ComptonScattering, p *particle.Particle,
 ) error {
 	total, err := s.totalEnergy(at+".flight", q.GetFlight(), p)
 	if err != nil {
@@ -107,7 +106,7 @@ func (s *photonService) comptonInFlight(
 		return err
 	}
 	a.ThomsonBarn = thomson.ThomsonBarn()
-	if err := each(ctx, len(q.GetDirections()), func(i int) error {
+	if err := work.each(len(q.GetDirections()), func(i int) error {
 		to := q.GetDirections()[i]
 		path := index("directions", i)
 		x, err := flight.Scatter(photon.Direction{ThetaRad: to.GetThetaRad(), PhiRad: to.GetPhiRad()})
@@ -122,7 +121,7 @@ func (s *photonService) comptonInFlight(
 	}); err != nil {
 		return err
 	}
-	return each(ctx, len(q.GetTotalsAtPhotonEnergiesGev()), func(i int) error {
+	return work.each(len(q.GetTotalsAtPhotonEnergiesGev()), func(i int) error {
 		flight.PhotonEnergyGeV = q.GetTotalsAtPhotonEnergiesGev()[i]
 		barn, err := flight.TotalBarn()
 		if err != nil {

@@ -36,7 +36,9 @@ func (s *photonService) DescribePhotonField(
 	if _, err := photon.Absorb(field, p.Mass, nil, request.GetDistanceM()); err != nil {
 		return nil, err
 	}
-	return m, each(ctx, len(energies), func(i int) error {
+	work := s.turns.begin(ctx)
+	defer work.end()
+	return m, work.each(len(energies), func(i int) error {
 		list, err := photon.Absorb(field, p.Mass, energies[i:i+1], request.GetDistanceM())
 		if err != nil {
 			return atField(index("photon_energies_gev", i), Explain(err))

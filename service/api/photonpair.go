@@ -1,7 +1,6 @@
 package api
 
 import (
-	"context"
 	"math"
 
 	"example.org/kinegate/kinematics/fault"
@@ -12,7 +11,7 @@ import (
 
 // pairCreation answers for gamma gamma -> a pair.
 func (s *photonService) pairCreation(
-	ctx context.Context, m *kinegatev1.DescribePhotonProcessResponse, q *kinegatev1.PairCreation,
+	work *spell, m *kinegatev1.DescribePhotonProcessResponse, q *kinegatev1.PairCreation,
 ) error {
 	const at = "pair_creation"
 	p, spin, err := s.pairOf(at+".particle", q.GetParticle())
@@ -48,7 +47,7 @@ func (s *photonService) pairCreation(
 			SqrtSGev: 2 * p.Mass / math.Sqrt((1-beta)*(1+beta)), Beta: beta, UnpolarisedBarn: peak * math.Pi * area,
 		}
 	}
-	if err := each(ctx, len(q.GetCosines()), func(i int) error {
+	if err := work.each(len(q.GetCosines()), func(i int) error {
 		d := e.Differential(spin, q.GetCosines()[i])
 		a.Differentials = append(a.Differentials, &kinegatev1.HelicityAngle{
 			Cosine: q.GetCosines()[i], UnpolarisedBarnPerSr: d.Unpolarised * area,
@@ -63,7 +62,7 @@ func (s *photonService) pairCreation(
 		"Higher orders and the attraction of the two charges, which matters for speeds of the order of alpha.",
 		"Linear polarisation of the photons, and structure and resonances: the particles are points.",
 	}
-	return each(ctx, len(q.GetTotalsAtSqrtSGev()), func(i int) error {
+	return work.each(len(q.GetTotalsAtSqrtSGev()), func(i int) error {
 		e, err := energyAt(at, i, q.GetTotalsAtSqrtSGev()[i], p.Mass)
 		if err != nil {
 			return err
@@ -121,7 +120,7 @@ func helicityMessage(b photon.ByHelicity, area float64) *kinegatev1.HelicityCros
 
 // annihilation answers for a pair -> gamma gamma.
 func (s *photonService) annihilation(
-	ctx context.Context, m *kinegatev1.DescribePhotonProcessResponse, q *kinegatev1.PairAnnihilation,
+	work *spell, m *kinegatev1.DescribePhotonProcessResponse, q *kinegatev1.PairAnnihilation,
 ) error {
 	const at = "annihilation"
 	p, err := s.lepton(at+".particle", q.GetParticle())
@@ -151,7 +150,7 @@ func (s *photonService) annihilation(
 		}
 	}
 	if a.TotalBarn != nil {
-		if err := each(ctx, len(q.GetCosines()), func(i int) error {
+		if err := work.each(len(q.GetCosines()), func(i int) error {
 			c := q.GetCosines()[i]
 			a.Differentials = append(a.Differentials, &kinegatev1.AnnihilationAngle{
 				Cosine: c, DifferentialBarnPerSr: e.AnnihilationDifferential(c) * area,
@@ -166,7 +165,7 @@ func (s *photonService) annihilation(
 		"Higher orders, annihilation to three photons, the weak interaction.",
 		"The attraction of slow pairs, bound states, and binding of the target electron.",
 	}
-	return each(ctx, len(q.GetTotalsAtSqrtSGev()), func(i int) error {
+	return work.each(len(q.GetTotalsAtSqrtSGev()), func(i int) error {
 		sqrtS := q.GetTotalsAtSqrtSGev()[i]
 		e, err := energyAt(at, i, sqrtS, p.Mass)
 		if err != nil {

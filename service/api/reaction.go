@@ -13,6 +13,7 @@ type reactionService struct {
 	kinegatev1.UnsafeReactionServiceServer
 
 	table *particle.Table
+	turns *turns
 	texts reactionTexts
 	last  lastSearch
 }

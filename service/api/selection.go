@@ -24,6 +24,8 @@ type selectionService struct {
 // newSelectionServices makes the services of the gate and of bulk work: they share
 // everything but the turns.
 func newSelectionServices(deps Deps) (gate, bulk *selectionService) {
+	// A processor stays free of bulk work: only an idle one looks at the network at once.
+	// With all of them at work the runtime does so every 10 ms, however often they yield.
 	n := runtime.GOMAXPROCS(0)
 	gate = &selectionService{
 		deps:    deps,
@@ -32,7 +34,7 @@ func newSelectionServices(deps Deps) (gate, bulk *selectionService) {
 		turns:   newTurns(n, false),
 	}
 	shared := *gate
-	shared.turns = newTurns(n, true)
+	shared.turns = newTurns(max(n-1, 1), true)
 	return gate, &shared
 }
 

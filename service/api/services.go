@@ -114,7 +114,7 @@ func New(deps Deps) (*Services, error) {
 	}
 	s := &Services{deps: deps, particle: newParticleService(deps.Table, standard)}
 	s.gate, s.bulk = newSelectionServices(deps)
-	// Making events is bulk work on either listener.
+	// Making events is bulk work on either listener, and so is whatever takes long.
 	s.generation = &generationService{deps: deps, turns: s.bulk.turns}
 	return s, nil
 }
@@ -128,9 +128,9 @@ func (s *Services) RegisterGate(r grpc.ServiceRegistrar) { s.register(r, s.gate)
 
 func (s *Services) register(r grpc.ServiceRegistrar, selections *selectionService) {
 	kinegatev1.RegisterParticleServiceServer(r, s.particle)
-	kinegatev1.RegisterReactionServiceServer(r, &reactionService{table: s.deps.Table})
-	kinegatev1.RegisterDecayServiceServer(r, &decayService{table: s.deps.Table})
-	kinegatev1.RegisterPhotonServiceServer(r, &photonService{table: s.deps.Table})
+	kinegatev1.RegisterReactionServiceServer(r, &reactionService{table: s.deps.Table, turns: s.bulk.turns})
+	kinegatev1.RegisterDecayServiceServer(r, &decayService{table: s.deps.Table, turns: s.bulk.turns})
+	kinegatev1.RegisterPhotonServiceServer(r, &photonService{table: s.deps.Table, turns: s.bulk.turns})
 	kinegatev1.RegisterSelectionServiceServer(r, selections)
 	kinegatev1.RegisterGenerationServiceServer(r, s.generation)
 	kinegatev1.RegisterInfoServiceServer(r, &infoService{deps: s.deps})

@@ -54,7 +54,9 @@ func (s *reactionService) SolveTwoBody(
 	if channel.Nominal.Excess < 0 {
 		return m, nil
 	}
-	return m, solveTwoBody(ctx, m, r, &channel, query, field)
+	work := s.turns.begin(ctx)
+	defer work.end()
+	return m, solveTwoBody(work, m, r, &channel, query, field)
 }
 
 // channel holds a reaction against an initial state, which must be given.
@@ -112,7 +114,7 @@ func (s *reactionService) twoBodyQuery(
 
 // solveTwoBody adds the limits and the solutions of an open channel.
 func solveTwoBody(
-	ctx context.Context, m *kinegatev1.SolveTwoBodyResponse, r *reaction.Reaction, c *reaction.Channel,
+	work *spell, m *kinegatev1.SolveTwoBodyResponse, r *reaction.Reaction, c *reaction.Channel,
 	query reaction.Query, field string,
 ) error {
 	two, err := c.Collision.TwoBody(r.Products[r.Top[0]].Particle.Mass, r.Products[r.Top[1]].Particle.Mass)
@@ -130,8 +132,8 @@ func solveTwoBody(
 		})
 	}
 	for values, from := query.Values, 0; from < len(values); from += chunk {
-		if err := ctx.Err(); err != nil {
-			return err
+		if work.stop() {
+			return work.ctx.Err()
 		}
 		query.Values = values[from:min(from+chunk, len(values))]
 		solutions, err := two.Solve(query)
