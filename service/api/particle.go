@@ -124,7 +124,7 @@ func particleMessage(p particle.Particle, table *particle.Table, origin kinegate
 		ChargeThirds:       int32Of(p.ChargeThirds()),
 		Parity:             sign(p.Parity),
 		CParity:            sign(p.CParity),
-		BaryonNumber:       int32Of(p.Numbers.BaryonThirds / 3),
+		BaryonNumberThirds: int32Of(p.Numbers.BaryonThirds),
 		ElectronNumber:     int32Of(p.Numbers.Electron),
 		MuonNumber:         int32Of(p.Numbers.Muon),
 		TauNumber:          int32Of(p.Numbers.Tau),

@@ -51,7 +51,7 @@ func TestGetParticle(t *testing.T) {
 		}
 		p := r.GetParticle()
 		if p.GetParticleNumber() != 2212 || !p.GetStable() || p.MeanLifeS != nil || p.WidthGev == nil || *p.WidthGev != 0 ||
-			p.GetBaryonNumber() != 1 || p.GetChargeThirds() != 3 || p.GetSpinDoubled() != 1 || p.GetParity() != 1 ||
+			p.GetBaryonNumberThirds() != 3 || p.GetChargeThirds() != 3 || p.GetSpinDoubled() != 1 || p.GetParity() != 1 ||
 			p.GetAntiparticleNumber() != -2212 || p.GetOrigin() != kinegatev1.ParticleOrigin_PARTICLE_ORIGIN_TABLE {
 			t.Errorf("proton: %v", p)
 		}

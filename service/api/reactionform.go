@@ -113,9 +113,9 @@ func remainderMessage(x *reaction.Remainder) *kinegatev1.InclusiveRemainder {
 		return nil
 	}
 	m := &kinegatev1.InclusiveRemainder{
-		ChargeThirds: int32Of(x.Numbers.ChargeThirds),
-		BaryonNumber: int32Of(x.Numbers.BaryonThirds / 3),
-		Strangeness:  int32Of(x.Numbers.Strangeness),
+		ChargeThirds:       int32Of(x.Numbers.ChargeThirds),
+		BaryonNumberThirds: int32Of(x.Numbers.BaryonThirds),
+		Strangeness:        int32Of(x.Numbers.Strangeness),
 	}
 	for _, p := range x.Lightest {
 		m.Lightest = append(m.Lightest, p.Name)

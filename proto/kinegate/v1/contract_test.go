@@ -167,10 +167,12 @@ var withoutUnit = map[string]string{
 
 // wholeNumbers lists the integers whose names look like counts and are none, with the reason.
 var wholeNumbers = map[string]string{
-	"ConvertMotionRequest.charge_thirds":  "a charge in thirds of the elementary charge",
-	"ConvertMotionResponse.charge_thirds": "a charge in thirds of the elementary charge",
-	"InclusiveRemainder.charge_thirds":    "a charge in thirds of the elementary charge",
-	"Particle.charge_thirds":              "a charge in thirds of the elementary charge",
+	"ConvertMotionRequest.charge_thirds":      "a charge in thirds of the elementary charge",
+	"ConvertMotionResponse.charge_thirds":     "a charge in thirds of the elementary charge",
+	"InclusiveRemainder.charge_thirds":        "a charge in thirds of the elementary charge",
+	"Particle.charge_thirds":                  "a charge in thirds of the elementary charge",
+	"InclusiveRemainder.baryon_number_thirds": "a baryon number in thirds",
+	"Particle.baryon_number_thirds":           "a baryon number in thirds",
 }
 
 // collective lists the repeated fields whose names are no plurals, with the reason.

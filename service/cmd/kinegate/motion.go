@@ -168,7 +168,7 @@ func (e *environment) printMotion(r *kinegatev1.ConvertMotionResponse) error {
 	if name == "" {
 		name = "body"
 	}
-	e.print("%s  mass %s, charge %s", name, gevs(r.GetMassGev()), chargeText(r.GetChargeThirds()))
+	e.print("%s  mass %s, charge %s", name, gevs(r.GetMassGev()), thirdsText(r.GetChargeThirds()))
 	t := text.NewTable("", "")
 	t.Row("total energy", gev(r.GetTotalEnergyGev()))
 	t.Row("kinetic energy", gev(r.GetKineticEnergyGev()))

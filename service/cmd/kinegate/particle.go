@@ -75,7 +75,7 @@ func (e *environment) describeParticle(p *kinegatev1.Particle, tableVersion stri
 	t := text.NewTable("", "")
 	t.Row("mass", massText(p))
 	t.Row("lifetime", lifetimeText(p))
-	t.Row("charge", chargeText(p.GetChargeThirds()))
+	t.Row("charge", thirdsText(p.GetChargeThirds()))
 	t.Row("spin, parity", spinText(p))
 	t.Row("quantum numbers", quantumText(p))
 	if p.GetAntiparticleNumber() != p.GetParticleNumber() {
@@ -112,7 +112,7 @@ func (e *environment) listParticles(ctx context.Context, client *kinegate.Client
 		if err := e.tell(reply, func() error {
 			for _, p := range reply.GetParticles() {
 				t.Row(fmt.Sprint(p.GetParticleNumber()), p.GetName(), quantity.Format(p.GetMassGev(), quantity.Energy, 7),
-					lifetimeText(p), chargeText(p.GetChargeThirds()), p.GetDescription())
+					lifetimeText(p), thirdsText(p.GetChargeThirds()), p.GetDescription())
 			}
 			return nil
 		}); err != nil {
@@ -180,7 +180,8 @@ func trimZeros(s string) string {
 	return value + " " + name
 }
 
-func chargeText(thirds int32) string {
+// thirdsText prints a charge or a baryon number.
+func thirdsText(thirds int32) string {
 	const perCharge = 3
 	switch {
 	case thirds == 0:
@@ -208,11 +209,14 @@ func spinText(p *kinegatev1.Particle) string {
 
 func quantumText(p *kinegatev1.Particle) string {
 	var parts []string
+	if n := p.GetBaryonNumberThirds(); n != 0 {
+		parts = append(parts, "baryon number "+thirdsText(n))
+	}
 	for _, q := range []struct {
 		name  string
 		value int32
 	}{
-		{"baryon number", p.GetBaryonNumber()}, {"electron number", p.GetElectronNumber()},
+		{"electron number", p.GetElectronNumber()},
 		{"muon number", p.GetMuonNumber()}, {"tau number", p.GetTauNumber()},
 		{"strangeness", p.GetStrangeness()}, {"charm", p.GetCharm()},
 		{"bottomness", p.GetBottomness()}, {"topness", p.GetTopness()},

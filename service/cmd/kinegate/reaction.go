@@ -134,8 +134,8 @@ func (e *environment) describeReaction(r *kinegatev1.DescribeReactionResponse) e
 		t.Row("s - m^2", fmt.Sprintf("%.*g GeV^2", digits, r.GetOneBodySMinusM2Gev2()))
 	}
 	if x := r.GetInclusive(); x != nil {
-		t.Row("X has", fmt.Sprintf("charge %s, baryon number %d, strangeness %d",
-			chargeText(x.GetChargeThirds()), x.GetBaryonNumber(), x.GetStrangeness()))
+		t.Row("X has", fmt.Sprintf("charge %s, baryon number %s, strangeness %d",
+			thirdsText(x.GetChargeThirds()), thirdsText(x.GetBaryonNumberThirds()), x.GetStrangeness()))
 		if len(x.GetLightest()) > 0 {
 			t.Row("lightest X", strings.Join(x.GetLightest(), " ")+", "+gev(x.GetLightestMassGev()))
 		}
