@@ -55,7 +55,7 @@ class ListParticlesResponse(_message.Message):
     def __init__(self, particles: _Optional[_Iterable[_Union[Particle, _Mapping]]] = ..., next_page_token: _Optional[str] = ..., table_version: _Optional[str] = ...) -> None: ...
 
 class Particle(_message.Message):
-    __slots__ = ("particle_number", "name", "aliases", "description", "mass_gev", "mass_uncertainty_gev", "width_gev", "width_uncertainty_gev", "mean_life_s", "mean_life_uncertainty_s", "stable", "charge_thirds", "spin_doubled", "parity", "c_parity", "baryon_number", "electron_number", "muon_number", "tau_number", "strangeness", "charm", "bottomness", "topness", "antiparticle_number", "antiparticle_name", "source", "origin", "not_breit_wigner")
+    __slots__ = ("particle_number", "name", "aliases", "description", "mass_gev", "mass_uncertainty_gev", "width_gev", "width_uncertainty_gev", "mean_life_s", "mean_life_uncertainty_s", "stable", "charge_thirds", "spin_doubled", "parity", "c_parity", "baryon_number_thirds", "electron_number", "muon_number", "tau_number", "strangeness", "charm", "bottomness", "topness", "antiparticle_number", "antiparticle_name", "source", "origin", "not_breit_wigner")
     PARTICLE_NUMBER_FIELD_NUMBER: _ClassVar[int]
     NAME_FIELD_NUMBER: _ClassVar[int]
     ALIASES_FIELD_NUMBER: _ClassVar[int]
@@ -71,7 +71,7 @@ class Particle(_message.Message):
     SPIN_DOUBLED_FIELD_NUMBER: _ClassVar[int]
     PARITY_FIELD_NUMBER: _ClassVar[int]
     C_PARITY_FIELD_NUMBER: _ClassVar[int]
-    BARYON_NUMBER_FIELD_NUMBER: _ClassVar[int]
+    BARYON_NUMBER_THIRDS_FIELD_NUMBER: _ClassVar[int]
     ELECTRON_NUMBER_FIELD_NUMBER: _ClassVar[int]
     MUON_NUMBER_FIELD_NUMBER: _ClassVar[int]
     TAU_NUMBER_FIELD_NUMBER: _ClassVar[int]
@@ -99,7 +99,7 @@ class Particle(_message.Message):
     spin_doubled: int
     parity: int
     c_parity: int
-    baryon_number: int
+    baryon_number_thirds: int
     electron_number: int
     muon_number: int
     tau_number: int
@@ -112,4 +112,4 @@ class Particle(_message.Message):
     source: str
     origin: ParticleOrigin
     not_breit_wigner: bool
-    def __init__(self, particle_number: _Optional[int] = ..., name: _Optional[str] = ..., aliases: _Optional[_Iterable[str]] = ..., description: _Optional[str] = ..., mass_gev: _Optional[float] = ..., mass_uncertainty_gev: _Optional[float] = ..., width_gev: _Optional[float] = ..., width_uncertainty_gev: _Optional[float] = ..., mean_life_s: _Optional[float] = ..., mean_life_uncertainty_s: _Optional[float] = ..., stable: bool = ..., charge_thirds: _Optional[int] = ..., spin_doubled: _Optional[int] = ..., parity: _Optional[int] = ..., c_parity: _Optional[int] = ..., baryon_number: _Optional[int] = ..., electron_number: _Optional[int] = ..., muon_number: _Optional[int] = ..., tau_number: _Optional[int] = ..., strangeness: _Optional[int] = ..., charm: _Optional[int] = ..., bottomness: _Optional[int] = ..., topness: _Optional[int] = ..., antiparticle_number: _Optional[int] = ..., antiparticle_name: _Optional[str] = ..., source: _Optional[str] = ..., origin: _Optional[_Union[ParticleOrigin, str]] = ..., not_breit_wigner: bool = ...) -> None: ...
+    def __init__(self, particle_number: _Optional[int] = ..., name: _Optional[str] = ..., aliases: _Optional[_Iterable[str]] = ..., description: _Optional[str] = ..., mass_gev: _Optional[float] = ..., mass_uncertainty_gev: _Optional[float] = ..., width_gev: _Optional[float] = ..., width_uncertainty_gev: _Optional[float] = ..., mean_life_s: _Optional[float] = ..., mean_life_uncertainty_s: _Optional[float] = ..., stable: bool = ..., charge_thirds: _Optional[int] = ..., spin_doubled: _Optional[int] = ..., parity: _Optional[int] = ..., c_parity: _Optional[int] = ..., baryon_number_thirds: _Optional[int] = ..., electron_number: _Optional[int] = ..., muon_number: _Optional[int] = ..., tau_number: _Optional[int] = ..., strangeness: _Optional[int] = ..., charm: _Optional[int] = ..., bottomness: _Optional[int] = ..., topness: _Optional[int] = ..., antiparticle_number: _Optional[int] = ..., antiparticle_name: _Optional[str] = ..., source: _Optional[str] = ..., origin: _Optional[_Union[ParticleOrigin, str]] = ..., not_breit_wigner: bool = ...) -> None: ...

@@ -188,15 +188,15 @@ class DecayNote(_message.Message):
     def __init__(self, decay: _Optional[str] = ..., decay_class: _Optional[_Union[DecayClass, str]] = ..., released_energy_gev: _Optional[float] = ...) -> None: ...
 
 class InclusiveRemainder(_message.Message):
-    __slots__ = ("charge_thirds", "baryon_number", "strangeness", "lightest", "lightest_mass_gev")
+    __slots__ = ("charge_thirds", "baryon_number_thirds", "strangeness", "lightest", "lightest_mass_gev")
     CHARGE_THIRDS_FIELD_NUMBER: _ClassVar[int]
-    BARYON_NUMBER_FIELD_NUMBER: _ClassVar[int]
+    BARYON_NUMBER_THIRDS_FIELD_NUMBER: _ClassVar[int]
     STRANGENESS_FIELD_NUMBER: _ClassVar[int]
     LIGHTEST_FIELD_NUMBER: _ClassVar[int]
     LIGHTEST_MASS_GEV_FIELD_NUMBER: _ClassVar[int]
     charge_thirds: int
-    baryon_number: int
+    baryon_number_thirds: int
     strangeness: int
     lightest: _containers.RepeatedScalarFieldContainer[str]
     lightest_mass_gev: float
-    def __init__(self, charge_thirds: _Optional[int] = ..., baryon_number: _Optional[int] = ..., strangeness: _Optional[int] = ..., lightest: _Optional[_Iterable[str]] = ..., lightest_mass_gev: _Optional[float] = ...) -> None: ...
+    def __init__(self, charge_thirds: _Optional[int] = ..., baryon_number_thirds: _Optional[int] = ..., strangeness: _Optional[int] = ..., lightest: _Optional[_Iterable[str]] = ..., lightest_mass_gev: _Optional[float] = ...) -> None: ...
