@@ -47,28 +47,44 @@ func load(t *testing.T, name string, s Sources) Effective {
 	return all[i]
 }
 
-// TestPrecedence goes through every setting: flag over environment over file over
-// default.
+// TestPrecedence goes through every setting and every combination of sources that give
+// it: flag over environment over file over default.
 func TestPrecedence(t *testing.T) {
 	for _, s := range server.Settings() {
 		t.Run(s.Name, func(t *testing.T) {
-			file, variable, flag := other(s, 0), other(s, 1), other(s, 2)
-			sources := Sources{Flags: map[string]string{}}
-			expect := func(value string, origin Origin, place string) {
-				t.Helper()
-				e := load(t, s.Name, sources)
-				if e.Value != value || e.Origin != origin || e.Place != place {
-					t.Errorf("got %q from %s, %s; want %q from %s, %s", e.Value, e.Origin, e.Place, value, origin, place)
+			givers := []struct {
+				origin Origin
+				place  string
+				value  string
+			}{
+				{File, "k.yaml", other(s, 0)}, {Environment, VariableName(s.Name), other(s, 1)}, {Flag, FlagName(s.Name), other(s, 2)},
+			}
+			for given := range 1 << len(givers) {
+				sources := Sources{
+					Flags: map[string]string{}, Environ: []string{"KINEGATE_CONFIG=/etc/k.yaml", "PATH=/bin"},
+					ReadFile: func(string) ([]byte, error) {
+						if given&1 == 0 {
+							return nil, nil
+						}
+						return []byte(s.Name + ": \"" + givers[0].value + "\"\n"), nil
+					},
+				}
+				if given&2 != 0 {
+					sources.Environ = append(sources.Environ, VariableName(s.Name)+"="+givers[1].value)
+				}
+				if given&4 != 0 {
+					sources.Flags[s.Name] = givers[2].value
+				}
+				want := Effective{Value: s.Default, Origin: Default}
+				for i, g := range givers {
+					if given&(1<<i) != 0 {
+						want = Effective{Value: g.value, Origin: g.origin, Place: g.place}
+					}
+				}
+				if e := load(t, s.Name, sources); e.Value != want.Value || e.Origin != want.Origin || e.Place != want.Place {
+					t.Errorf("given %03b: %q from %s, %s; want %q from %s, %s", given, e.Value, e.Origin, e.Place, want.Value, want.Origin, want.Place)
 				}
 			}
-			expect(s.Default, Default, "")
-			sources.ReadFile = func(string) ([]byte, error) { return []byte(s.Name + ": \"" + file + "\"\n"), nil }
-			sources.Environ = []string{"KINEGATE_CONFIG=/etc/k.yaml", "PATH=/bin"}
-			expect(file, File, "k.yaml")
-			sources.Environ = append(sources.Environ, VariableName(s.Name)+"="+variable)
-			expect(variable, Environment, VariableName(s.Name))
-			sources.Flags[s.Name] = flag
-			expect(flag, Flag, FlagName(s.Name))
 		})
 	}
 }

@@ -264,13 +264,26 @@ func (f *front) admit(c *call) error {
 		return f.refuse(api.OverLimit(api.ServerOverloaded, "the number of open calls,", open, most,
 			"try again later or elsewhere"))
 	}
-	if f.rules.shared {
-		if err := f.quota.enter(c.caller, int64(c.use.options.CallerCalls)); err != nil {
-			f.open.Add(-1)
-			return f.refuse(err)
-		}
+	if err := f.admitShared(c); err != nil {
+		f.open.Add(-1)
+		return f.refuse(err)
 	}
 	return nil
+}
+
+// admitShared admits what a shared listener holds callers to. Work that could not even
+// wait is refused here, before its message is read; so are streams that only send, which
+// take turns with the calls later. Streams that receive have credit.
+func (f *front) admitShared(c *call) error {
+	if !f.rules.shared {
+		return nil
+	}
+	if c.single {
+		if err := f.work.full(c.use.options.slots()); err != nil {
+			return err
+		}
+	}
+	return f.quota.enter(c.caller, int64(c.use.options.CallerCalls))
 }
 
 // gone reports whether the notice of leaving is over.
@@ -364,16 +377,20 @@ func (c *call) identity() string {
 	return c.names[0]
 }
 
-// caller tells callers apart: those who share a certificate by their address.
+// caller tells callers apart: those who share a certificate by their address, those of
+// a unix socket by their user.
 func caller(ctx context.Context, identity string) string {
-	host := ""
+	where := ""
 	if p, ok := peer.FromContext(ctx); ok {
-		host = p.Addr.String()
-		if h, _, err := net.SplitHostPort(host); err == nil {
-			host = h
+		where = p.Addr.String()
+		if host, _, err := net.SplitHostPort(where); err == nil {
+			where = host
+		}
+		if from, ok := p.Addr.(origin); ok && from.conn.user != "" {
+			where = "user " + from.conn.user
 		}
 	}
-	return strings.Trim(identity+" "+host, " ")
+	return strings.Trim(identity+" "+where, " ")
 }
 
 // exemplar is the trace that the duration of the call may name: one that its caller

@@ -94,7 +94,7 @@ func (b bounded) Accept() (net.Conn, error) {
 		}
 		if b.places.open.Add(1) <= b.places.most {
 			b.places.metrics.Connections(1)
-			return &placed{Conn: conn, places: b.places, since: time.Now()}, nil
+			return &placed{Conn: conn, places: b.places, since: time.Now(), user: peerUser(conn)}, nil
 		}
 		b.places.open.Add(-1)
 		b.places.metrics.Rejected(connectionLimit)
@@ -108,6 +108,7 @@ type placed struct {
 
 	places *places
 	since  time.Time
+	user   string // number of the user at the other end of a unix socket; empty where it cannot be told
 	once   sync.Once
 }
 

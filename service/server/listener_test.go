@@ -7,11 +7,15 @@ import (
 	"net"
 	"os"
 	"path/filepath"
+	"runtime"
+	"strconv"
 	"testing"
 	"time"
 
+	"google.golang.org/grpc"
 	"google.golang.org/grpc/credentials/insecure"
 
+	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 	"example.org/kinegate/service/api"
 )
 
@@ -71,6 +75,41 @@ func TestUnixSocket(t *testing.T) {
 	writeFile(t, path, []byte("mine"))
 	if err := prepare(t, set).Listen(t.Context()); err == nil {
 		t.Error("a file was replaced")
+	}
+}
+
+// TestCallersOfSockets: callers of a unix socket are told apart by their user, those of
+// the network by their address.
+func TestCallersOfSockets(t *testing.T) {
+	if runtime.GOOS != "linux" {
+		t.Skip("only Linux tells")
+	}
+	r := start(t, func(o *Options, d *Deps) {
+		onSockets(o, d)
+		o.GeneralAddress, o.CallerCalls = "unix:"+filepath.Join(t.TempDir(), "general.sock"), 1
+	})
+	for name, c := range map[Listener]string{General: "user " + strconv.Itoa(os.Getuid()), Gate: ""} {
+		conn, err := net.Dial(r.Addr(name).Network(), r.Addr(name).String())
+		if err != nil {
+			t.Fatal(err)
+		}
+		defer func() { _ = conn.Close() }()
+		if got := peerUser(conn); c != "" && "user "+got != c || c == "" && got != "" {
+			t.Errorf("%s: the other end is %q", name, got)
+		}
+	}
+	conn, err := grpc.NewClient("unix:"+r.Addr(General).String(), grpc.WithTransportCredentials(insecure.NewCredentials()))
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer func() { _ = conn.Close() }()
+	if _, err := grpc.NewClientStream(t.Context(), &grpc.StreamDesc{ClientStreams: true}, conn, kinegatev1.InfoService_GetInfo_FullMethodName); err != nil {
+		t.Fatal(err)
+	}
+	eventually(t, "a call of the quota", func() bool { return r.metric(t, "rpc_server_calls_in_flight") == 1 })
+	_, err = kinegatev1.NewInfoServiceClient(conn).GetInfo(t.Context(), &kinegatev1.GetInfoRequest{})
+	if m := wantReason(t, err, api.QuotaExceeded); m["caller"] != "user "+strconv.Itoa(os.Getuid()) {
+		t.Errorf("metadata %v", m)
 	}
 }
 

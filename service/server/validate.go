@@ -145,6 +145,10 @@ func (o *Options) timeFaults() fault.List {
 		faults = append(faults, clash("default_deadline", o.DefaultDeadline.String(),
 			"at most longest_deadline, "+o.LongestDeadline.String(), "it is above longest_deadline"))
 	}
+	if o.LongestDeadline > o.ConnectionAgeGrace {
+		faults = append(faults, clash("longest_deadline", o.LongestDeadline.String(),
+			"at most connection_age_grace, "+o.ConnectionAgeGrace.String(), "calls would be cut with their connection"))
+	}
 	if o.ClientPingAdvice < o.ClientPingMinimum {
 		faults = append(faults, clash("client_ping_advice", o.ClientPingAdvice.String(),
 			"at least client_ping_minimum, "+o.ClientPingMinimum.String(), "the server would cut off such clients"))

@@ -115,6 +115,7 @@ func TestValidate(t *testing.T) {
 		{"notice", func(o *Options) { o.DrainNotice = -1 }, "drain_notice", nil},
 		{"grace", func(o *Options) { o.DrainTime = time.Minute }, "termination_grace", []string{"drain_notice", "drain_time", "stop_margin"}},
 		{"deadlines", func(o *Options) { o.DefaultDeadline = time.Hour }, "default_deadline", []string{"longest_deadline"}},
+		{"calls outlive connections", func(o *Options) { o.LongestDeadline = 2 * time.Minute }, "longest_deadline", []string{"connection_age_grace"}},
 		{"pings", func(o *Options) { o.PingTimeout = time.Minute }, "ping_timeout", []string{"ping_interval"}},
 		{"pings of clients", func(o *Options) { o.ClientPingMinimum = 0 }, "client_ping_minimum", nil},
 		{"age", func(o *Options) { o.ConnectionAge = 0 }, "connection_age", nil},

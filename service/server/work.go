@@ -35,21 +35,16 @@ type waiter struct {
 // of the same cost.
 func (q *workQueue) enter(ctx context.Context, cost, slots int) error {
 	q.mu.Lock()
-	room := slots * api.SlotShares
-	if len(q.waiting) == 0 && q.used+cost <= room {
+	now, err := q.placeLocked(cost, slots)
+	if now {
 		q.takeLocked(cost)
-		q.mu.Unlock()
-		q.metrics.WorkAdmitted(0)
-		return nil
 	}
-	if most := room / 2; q.queued+cost > most {
-		q.dropExpiredLocked()
-		if q.queued+cost > most {
-			queued := q.queued
-			q.mu.Unlock()
-			return api.OverLimit(api.ServerOverloaded, "the work that waits, in shares of a slot,",
-				int64(queued+cost), int64(most), "try again later or elsewhere")
+	if now || err != nil {
+		q.mu.Unlock()
+		if err == nil {
+			q.metrics.WorkAdmitted(0)
 		}
+		return err
 	}
 	w := &waiter{ctx, cost, slots, make(chan struct{})}
 	q.waiting = append(q.waiting, w)
@@ -63,6 +58,32 @@ func (q *workQueue) enter(ctx context.Context, cost, slots int) error {
 	case <-ctx.Done():
 		return q.giveUp(w)
 	}
+}
+
+// full refuses if not even the cheapest work could enter, so that a call can be refused
+// before its message is read.
+func (q *workQueue) full(slots int) error {
+	q.mu.Lock()
+	defer q.mu.Unlock()
+	_, err := q.placeLocked(1, slots)
+	return err
+}
+
+// placeLocked says whether work may begin now, or wait; the error refuses it.
+func (q *workQueue) placeLocked(cost, slots int) (now bool, err error) {
+	room := slots * api.SlotShares
+	if len(q.waiting) == 0 && q.used+cost <= room {
+		return true, nil
+	}
+	most := room / 2
+	if q.queued+cost > most {
+		q.dropExpiredLocked()
+	}
+	if q.queued+cost > most {
+		return false, api.OverLimit(api.ServerOverloaded, "the work that waits, in shares of a slot,",
+			int64(q.queued+cost), int64(most), "try again later or elsewhere")
+	}
+	return false, nil
 }
 
 // giveUp takes a waiter whose call has ended out of the queue, or gives back the room

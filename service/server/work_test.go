@@ -8,7 +8,10 @@ import (
 	"time"
 
 	"github.com/prometheus/client_golang/prometheus"
+	"google.golang.org/grpc"
+	healthpb "google.golang.org/grpc/health/grpc_health_v1"
 
+	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 	"example.org/kinegate/service/api"
 	"example.org/kinegate/service/telemetry"
 )
@@ -73,6 +76,51 @@ func TestWorkQueue(t *testing.T) {
 	}
 	if q.used != 0 || q.queued != 0 || len(q.waiting) != 0 {
 		t.Errorf("%d used, %d queued", q.used, q.queued)
+	}
+}
+
+// TestFullQueueRefusesAtTheDoor: when not even the cheapest work could wait, calls and
+// streams that only send are refused before a message of theirs is read; health and
+// streams with credit are not.
+func TestFullQueueRefusesAtTheDoor(t *testing.T) {
+	r := start(t, func(o *Options, _ *Deps) { o.WorkSlots = 1 })
+	conn := r.general(t)
+	generate := func() error {
+		stream, err := kinegatev1.NewGenerationServiceClient(conn).GenerateEvents(t.Context(), endlessSample())
+		if err == nil {
+			_, err = stream.Recv()
+		}
+		return err
+	}
+	unread := func() error { // a call whose message never comes
+		stream, err := conn.NewStream(t.Context(), &grpc.StreamDesc{ClientStreams: true}, kinegatev1.InfoService_GetInfo_FullMethodName)
+		if err == nil {
+			err = stream.RecvMsg(&kinegatev1.GetInfoResponse{})
+		}
+		return err
+	}
+	q := r.fronts[General].work
+	if err := q.enter(t.Context(), api.SlotShares, 1); err != nil {
+		t.Fatal(err)
+	}
+	ctx, cancel := context.WithCancel(t.Context())
+	waiting := make(chan error, 1)
+	go func() { waiting <- q.enter(ctx, api.SlotShares/2, 1) }()
+	eventually(t, "a full queue", func() bool { return q.length() == 1 })
+	wantReason(t, generate(), api.ServerOverloaded)
+	wantReason(t, unread(), api.ServerOverloaded)
+	wantReason(t, rawly(t.Context(), conn, kinegatev1.SelectionService_Judge_FullMethodName), api.StreamProtocolBroken)
+	if _, err := healthpb.NewHealthClient(conn).Check(t.Context(), &healthpb.HealthCheckRequest{}); err != nil {
+		t.Errorf("health: %v", err)
+	}
+	if n := r.metric(t, "rpc_server_rejected_total", string(api.ServerOverloaded)); n != 2 {
+		t.Errorf("%g refusals are counted", n)
+	}
+	cancel()
+	<-waiting
+	q.leave(api.SlotShares)
+	if err := generate(); err != nil {
+		t.Errorf("with room: %v", err)
 	}
 }
 

@@ -7,7 +7,9 @@ import (
 	"github.com/rs/zerolog"
 )
 
-// burstPeriod is the time that a burst of lines is counted in.
+// burstPeriod is the time that a burst of lines is counted in. Lines kept beyond the
+// burst of calls that went well are bounded by another burst, so that no flood writes more
+// than four bursts in it.
 const burstPeriod = time.Second
 
 // Sampling says how many lines of finished calls are written. Above the burst some
@@ -47,7 +49,10 @@ func NewCallLog(log zerolog.Logger, sampling Sampling, dropped func()) *CallLog 
 		return log.Sample(&zerolog.BurstSampler{Burst: uint32(sampling.Burst), Period: burstPeriod, NextSampler: then}) //nolint:gosec // at most 1<<30
 	}
 	return &CallLog{
-		well:    burst(&zerolog.BasicSampler{N: uint32(sampling.KeepOneIn)}), //nolint:gosec // at most 1<<30
+		well: burst(both{
+			&zerolog.BasicSampler{N: uint32(sampling.KeepOneIn)},                      //nolint:gosec // at most 1<<30
+			&zerolog.BurstSampler{Burst: uint32(sampling.Burst), Period: burstPeriod}, //nolint:gosec // at most 1<<30
+		}),
 		refused: burst(held(dropped)),
 		// Apart from the refused ones, so that a flood of those hides no fault of ours.
 		failed: burst(held(dropped)),
@@ -62,6 +67,12 @@ func (c *CallLog) Refused() *zerolog.Event { return c.refused.Warn() } //nolint:
 
 // Failed starts the line of a call that met a fault of ours.
 func (c *CallLog) Failed() *zerolog.Event { return c.failed.Error() } //nolint:zerologlint // the caller sends it
+
+// both keeps what its first sampler keeps and its second does too.
+type both [2]zerolog.Sampler
+
+// Sample asks the second for what the first keeps.
+func (b both) Sample(level zerolog.Level) bool { return b[0].Sample(level) && b[1].Sample(level) }
 
 // held is a sampler that keeps nothing and counts.
 type held func()

@@ -92,8 +92,8 @@ func TestCallLogIsBounded(t *testing.T) {
 	refused := bytes.Count(b.Bytes(), []byte("\n"))
 	b.Reset()
 	log.Failed().Msg("call")
-	// One burst, or two when the second changes in between.
-	if well < burst || well > 2*burst+20000/keepOneIn {
+	// A burst and one of kept lines, or two of each when the second changes in between.
+	if well < burst || well > 4*burst {
 		t.Errorf("%d lines of calls that went well", well)
 	}
 	if refused < burst || refused > 2*burst || held < 20000-refused {

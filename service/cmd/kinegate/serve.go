@@ -115,7 +115,8 @@ func (s *serving) run(ctx context.Context) error {
 		return usageError{err}
 	}
 	if s.validateOnly {
-		return nil
+		_, err := fmt.Fprintln(s.out, "the settings and the files that they name are sound")
+		return err
 	}
 	return s.serve(ctx, server, func(text string) { log.Info().Msg(text) })
 }

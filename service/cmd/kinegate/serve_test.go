@@ -129,8 +129,8 @@ func TestBadConfigurationExitsWithUsage(t *testing.T) {
 			}
 		})
 	}
-	if _, errs, code := output(t, nil, onLoopback("--validate-config")...); code != 0 || errs != "" {
-		t.Errorf("a sound configuration: code %d: %s", code, errs)
+	if out, errs, code := output(t, nil, onLoopback("--validate-config")...); code != 0 || errs != "" || strings.Count(out, "\n") != 1 {
+		t.Errorf("a sound configuration: code %d: %s%s", code, out, errs)
 	}
 }
 
