@@ -29,6 +29,8 @@ type environment struct {
 	address  string
 	options  kinegate.Options
 	timeout  time.Duration
+	// wait lets a call wait for a server that is not there yet.
+	wait bool
 }
 
 func newEnvironment(p program) *environment {
@@ -50,6 +52,7 @@ func (e *environment) flags(c *cobra.Command) {
 	f.StringVar(&e.options.ServerName, "server-name", "", "name that the server's certificate must carry, if not that of --address")
 	f.BoolVar(&e.json, "json", false, "print the reply in its JSON form, columns as arrays")
 	f.DurationVar(&e.timeout, "timeout", 10*time.Second, "time to wait for an answer")
+	f.BoolVar(&e.wait, "wait", false, "wait up to --timeout for a server at --address that is not there yet")
 }
 
 // connect returns a client of the server at --address, or of one that it starts in
@@ -83,11 +86,58 @@ func (e *environment) connectGate(ctx context.Context, gateAddress string) (call
 		stop()
 		return nil, nil, nil, usageError{err}
 	}
+	if e.address != "" {
+		err = e.reach(ctx, general, calls)
+		if err == nil && gateAddress != general {
+			err = e.reach(ctx, gateAddress, gate)
+		}
+		if err != nil {
+			_ = calls.Close()
+			_ = gate.Close()
+			return nil, nil, nil, err
+		}
+	}
 	return calls, gate, func() {
 		_ = calls.Close()
 		_ = gate.Close()
 		stop()
 	}, nil
+}
+
+// Times of reaching a server.
+const (
+	// quietReach is how long nothing is said: a server on the same network is there by then.
+	quietReach = 300 * time.Millisecond
+	// reachAgain is the time between two attempts with --wait.
+	reachAgain = 200 * time.Millisecond
+)
+
+// reach tries to connect, says what it tries if that takes a moment, and fails at once
+// where nobody listens, unless it is to wait.
+func (e *environment) reach(ctx context.Context, address string, client *kinegate.Client) error {
+	ctx, cancel := e.calling(ctx)
+	defer cancel()
+	reached := make(chan error, 1)
+	go func() {
+		err := client.Reach(ctx)
+		for again := time.Tick(reachAgain); err != nil && e.wait && ctx.Err() == nil; {
+			select {
+			case <-again:
+				if latest := client.Reach(ctx); ctx.Err() == nil {
+					err = latest
+				}
+			case <-ctx.Done():
+			}
+		}
+		reached <- err
+	}()
+	select {
+	case err := <-reached:
+		return err
+	case <-time.After(quietReach):
+	}
+	_, _ = fmt.Fprintf(e.err, "kinegate: waiting for a server at %s, up to %s\n", address, e.timeout)
+	return <-reached
 }
 
 // ownServer is a server in this process.
