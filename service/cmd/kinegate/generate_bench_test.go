@@ -54,6 +54,18 @@ func omegaInProcess(b *testing.B) (*generation.Generator, *detector.Detector) {
 	return g, d
 }
 
+// omegaGeneration is the generator as a server is asked for it, with a detector or none.
+func omegaGeneration(d *kinegatev1.Detector) *kinegatev1.Generation {
+	return &kinegatev1.Generation{
+		Seed: 1, Channels: []*kinegatev1.GenerationChannel{{Reaction: omegaExample}}, Detector: d,
+		InitialState: &kinegatev1.GenerationInitialState{Kind: &kinegatev1.GenerationInitialState_BeamOnTarget{
+			BeamOnTarget: &kinegatev1.SpectrumOnTarget{Beam: &kinegatev1.BeamSpectrum{
+				Kind: &kinegatev1.BeamSpectrum_Even{Even: &kinegatev1.EnergyRange{MinGev: 1.2, MaxGev: 2.4}},
+			}},
+		}},
+	}
+}
+
 // BenchmarkGenerateEvents compares the rate at which events with truth and measurement
 // reach a client in this process from a server in another with the rate at which one
 // goroutine makes them here. The two alternate, so that both see the same machine.
@@ -71,14 +83,7 @@ func BenchmarkGenerateEvents(b *testing.B) {
 	if err != nil {
 		b.Fatal(err)
 	}
-	request := &kinegatev1.GenerateEventsRequest{EventCount: events, Generation: &kinegatev1.Generation{
-		Seed: 1, Channels: []*kinegatev1.GenerationChannel{{Reaction: omegaExample}}, Detector: reply.GetDetector(),
-		InitialState: &kinegatev1.GenerationInitialState{Kind: &kinegatev1.GenerationInitialState_BeamOnTarget{
-			BeamOnTarget: &kinegatev1.SpectrumOnTarget{Beam: &kinegatev1.BeamSpectrum{
-				Kind: &kinegatev1.BeamSpectrum_Even{Even: &kinegatev1.EnergyRange{MinGev: 1.2, MaxGev: 2.4}},
-			}},
-		}},
-	}}
+	request := &kinegatev1.GenerateEventsRequest{EventCount: events, Generation: omegaGeneration(reply.GetDetector())}
 	generator, measuring := omegaInProcess(b)
 	var truth event.Truth
 	var block event.Block

@@ -1,18 +1,7 @@
 package main
 
 import (
-	"context"
-	"crypto/ecdsa"
-	"crypto/elliptic"
-	"crypto/rand"
-	"crypto/x509"
-	"crypto/x509/pkix"
-	"encoding/pem"
-	"math/big"
-	"os"
-	"path/filepath"
 	"slices"
-	"sync"
 	"testing"
 	"time"
 
@@ -109,77 +98,4 @@ func BenchmarkJudgeLatency(b *testing.B) {
 			}
 		})
 	}
-}
-
-// BenchmarkGateBesideBulk compares the latency of verdicts, over TLS at a tenth of the
-// load, alone and while four callers keep the other listener busy with whole blocks.
-func BenchmarkGateBesideBulk(b *testing.B) {
-	certificate, key := selfSigned(b)
-	g := startGate(b, "--certificate-file", certificate, "--key-file", key)
-	options := kinegate.Options{TLS: true, CAFile: certificate, ServerName: "localhost"}
-	client := func(where string) *kinegate.Client {
-		c, err := kinegate.Dial(where, options)
-		if err != nil {
-			b.Fatal(err)
-		}
-		b.Cleanup(func() { _ = c.Close() })
-		return c
-	}
-	block, bulk := sixPhotons(perLatencyBlock), message(sixPhotons(4096))
-	stream := openGate(b, client(g.where["gate"]))
-	general := client(g.where["general"])
-	for b.Loop() {
-		rate := saturation(b, stream, block) / 10
-		alone := openLoop(b, stream, block, rate, int(3*rate))
-		ctx, cancel := context.WithCancel(b.Context())
-		var busy sync.WaitGroup
-		for range 4 {
-			busy.Go(func() {
-				for ctx.Err() == nil {
-					_, _ = general.Selections.JudgeBlock(ctx, &kinegatev1.JudgeBlockRequest{
-						Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: pairSelection()}},
-						Block:     bulk,
-					})
-				}
-			})
-		}
-		beside := openLoop(b, stream, block, rate, int(3*rate))
-		cancel()
-		busy.Wait()
-		b.ReportMetric(at(alone, 0.99), "us-p99-alone")
-		b.ReportMetric(at(beside, 0.99), "us-p99-beside")
-		b.ReportMetric(at(beside, 0.999), "us-p99.9-beside")
-		b.ReportMetric(at(beside, 0.99)/at(alone, 0.99), "x-p99")
-	}
-}
-
-// selfSigned writes a certificate for localhost and its key.
-func selfSigned(t testing.TB) (certificate, key string) {
-	t.Helper()
-	private, err := ecdsa.GenerateKey(elliptic.P256(), rand.Reader)
-	if err != nil {
-		t.Fatal(err)
-	}
-	template := &x509.Certificate{
-		SerialNumber: big.NewInt(1), Subject: pkix.Name{CommonName: "localhost"}, DNSNames: []string{"localhost"},
-		NotBefore: time.Now().Add(-time.Hour), NotAfter: time.Now().Add(time.Hour),
-		IsCA: true, BasicConstraintsValid: true,
-	}
-	der, err := x509.CreateCertificate(rand.Reader, template, template, &private.PublicKey, private)
-	if err != nil {
-		t.Fatal(err)
-	}
-	encoded, err := x509.MarshalECPrivateKey(private)
-	if err != nil {
-		t.Fatal(err)
-	}
-	folder := t.TempDir()
-	write := func(name, kind string, data []byte) string {
-		path := filepath.Join(folder, name)
-		if err := os.WriteFile(path, pem.EncodeToMemory(&pem.Block{Type: kind, Bytes: data}), 0o600); err != nil {
-			t.Fatal(err)
-		}
-		return path
-	}
-	return write("certificate.pem", "CERTIFICATE", der), write("key.pem", "EC PRIVATE KEY", encoded)
 }
