@@ -9,6 +9,7 @@ from typing import TYPE_CHECKING, Any
 
 os.environ.setdefault("MPLBACKEND", "Agg")
 
+import numpy as np
 import pytest
 
 import kinegate
@@ -49,6 +50,7 @@ def examples(
     if request.node.__class__.__name__ == "DoctestItem":
         monkeypatch.chdir(HERE)
         doctest_namespace["kinegate"] = kinegate
+        doctest_namespace["np"] = np
         for name in ("server", "client"):
             doctest_namespace[name] = request.getfixturevalue(name)
     yield

@@ -46,6 +46,7 @@ from kinegate.errors import (
     UsageError,
 )
 from kinegate.events import COORDINATES, NEGATIVE, NEUTRAL, PHOTON, POSITIVE, Events
+from kinegate.explanation import Explanation, HypothesisExplanation, Pull, WindowExplanation
 from kinegate.faults import Check
 from kinegate.generation import Generated, GenerationCheck, GenerationLike, Truth
 from kinegate.generationstream import AsyncGenerationStream, GenerationStream
@@ -66,7 +67,7 @@ from kinegate.stream import JudgeStream
 from kinegate.stubs import Stubs
 from kinegate.tables import Table
 from kinegate.twobody import TwoBody
-from kinegate.verdicts import Entries, Observable, Verdicts
+from kinegate.verdicts import Entries, Fits, Observable, Verdicts
 
 try:
     __version__ = version("kinegate")
@@ -103,14 +104,17 @@ __all__ = [
     "DetectorLike",
     "Entries",
     "Events",
+    "Explanation",
     "FailedPrecondition",
     "FieldPair",
     "FieldViolation",
+    "Fits",
     "Generated",
     "GenerationCheck",
     "GenerationLike",
     "GenerationStream",
     "Hypothesis",
+    "HypothesisExplanation",
     "Info",
     "Internal",
     "InvalidArgument",
@@ -130,6 +134,7 @@ __all__ = [
     "PhotonField",
     "PhotonProcess",
     "Polarisation",
+    "Pull",
     "Question",
     "Range",
     "Reaction",
@@ -151,6 +156,7 @@ __all__ = [
     "Verdicts",
     "VertexGroups",
     "Vertices",
+    "WindowExplanation",
     "__version__",
     "connect",
     "connect_async",

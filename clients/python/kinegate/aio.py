@@ -32,6 +32,7 @@ if TYPE_CHECKING:
     from types import TracebackType
 
     from kinegate.bound import Bound
+    from kinegate.explanation import Explanation
     from kinegate.question import Question
     from kinegate.v1 import generation_pb2, verdict_pb2
     from kinegate.verdicts import Verdicts
@@ -60,6 +61,14 @@ class AsyncClient:
     """A connection to a server for one event loop; :func:`connect_async` makes it.
 
     Its methods are those of :class:`kinegate.Client`, awaited.
+
+    >>> async def masses():
+    ...     async with kinegate.connect_async(server.address) as client:
+    ...         return [p.mass for p in await asyncio.gather(
+    ...             client.particle("eta"), client.particle("omega"))]
+    >>> import asyncio
+    >>> asyncio.run(masses())
+    [0.547..., 0.782...]
     """
 
     def __init__(self, target: Target) -> None:
@@ -154,6 +163,13 @@ class AsyncClient:
         chosen = await self.selection(selection)
         return await self.ask(chosen.judging(events, entries))
 
+    async def explain(
+        self, events: Events, selection: SelectionLike, *, event: int = 0, most: int = 0
+    ) -> Explanation:
+        """Lay the verdict on one event open; arguments as for :meth:`kinegate.Client.explain`."""
+        chosen = await self.selection(selection)
+        return await self.ask(chosen.explaining(events, event, most))
+
     async def generate(
         self,
         source: GenerationLike,
@@ -198,7 +214,18 @@ class AsyncClient:
 
 
 class AsyncJudgeStream:
-    """An asynchronous iterator of (block, verdict) pairs in the order of the blocks."""
+    """An asynchronous iterator of (block, verdict) pairs in the order of the blocks.
+
+    >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv")
+    >>> async def judge():
+    ...     async with kinegate.connect_async(
+    ...         server.address, gate_address=server.gate_address) as client:
+    ...         stream = client.judge(sample, "../../testdata/selections/dimuon.yaml")
+    ...         return [int(verdict.gate.sum()) async for block, verdict in stream]
+    >>> import asyncio
+    >>> asyncio.run(judge())
+    [1000, 1000, 1000]
+    """
 
     def __init__(
         self,

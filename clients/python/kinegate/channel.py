@@ -20,7 +20,11 @@ _OPEN = ("OPEN", "OPEN_THROUGH_WIDTH", "ON_POINT")
 
 @dataclass(frozen=True)
 class Range:
-    """A closed range, in GeV or radian as its owner says."""
+    """A closed range, in GeV or radian as its owner says.
+
+    >>> 0.2 in kinegate.Range(0.1, 0.3)
+    True
+    """
 
     low: float
     """Lower end."""
@@ -33,7 +37,12 @@ class Range:
 
 @dataclass(frozen=True)
 class Limits:
-    """Where one product can go: energies and momenta in GeV, angles in radian."""
+    """Where one product can go: energies and momenta in GeV, angles in radian.
+
+    >>> kaon = client.reaction("gamma p -> K+ Lambda", beam="1.2 GeV").products["K+"]
+    >>> kaon.mass, 0.5 in kaon.momentum
+    (0.493677, True)
+    """
 
     product: str
     """Reference of the product, such as "pi0[1]"."""

@@ -27,6 +27,7 @@ if TYPE_CHECKING:
 
     from kinegate.bound import Bound
     from kinegate.events import Events
+    from kinegate.explanation import Explanation
     from kinegate.question import Question
     from kinegate.v1 import generation_pb2
     from kinegate.verdicts import Verdicts
@@ -64,6 +65,9 @@ class Client:
     Every method asks one question and returns its answer, or raises a
     :class:`kinegate.ServerError`. A client may be used from several threads. It can be
     pickled, which is how it travels to spawned processes: there it connects anew.
+
+    >>> client.reaction("gamma p -> K+ Lambda", beam="1.2 GeV").is_open
+    True
     """
 
     def __init__(self, target: Target) -> None:
@@ -220,6 +224,19 @@ class Client:
         """
         chosen = self.selection(selection)
         return self.ask(chosen.judging(events, entries))
+
+    def explain(
+        self, events: Events, selection: SelectionLike, *, event: int = 0, most: int = 0
+    ) -> Explanation:
+        """Lay the verdict on one event open: assignments, windows, constraints and pulls.
+
+        Args:
+            events: A sample.
+            selection: Anything that :meth:`selection` takes.
+            event: Place of the event in the sample.
+            most: Most assignments to list for a hypothesis, at most 1,000; 0 for 100.
+        """
+        return self.ask(self.selection(selection).explaining(events, event, most))
 
     def generate(
         self,

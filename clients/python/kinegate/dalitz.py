@@ -26,7 +26,12 @@ __all__ = ["Boundary", "Dalitz", "dalitz"]
 
 @dataclass(frozen=True)
 class Boundary:
-    """The closed curve at one energy: masses squared of pairs in GeV squared."""
+    """The closed curve at one energy: masses squared of pairs in GeV squared.
+
+    >>> boundary = client.dalitz("omega -> pi+ pi- pi0").boundaries[0]
+    >>> bool(boundary.first_second.min() > 0.279**2)
+    True
+    """
 
     sqrt_s: float
     """Energy in the rest frame of the three bodies, GeV."""
@@ -41,7 +46,11 @@ class Boundary:
 
 
 class Dalitz(Answer[dalitz_pb2.TraceDalitzBoundaryResponse]):
-    """Boundaries at one or several energies; `kinegate.plot.dalitz` draws them."""
+    """Boundaries at one or several energies; `kinegate.plot.dalitz` draws them.
+
+    >>> client.dalitz("omega -> pi+ pi- pi0").bodies
+    ['pi+', 'pi-', 'pi0']
+    """
 
     @property
     def bodies(self) -> list[str]:

@@ -20,7 +20,12 @@ __all__ = ["Decay", "decay"]
 
 
 class Decay(Answer[decay_pb2.DescribeDecayResponse]):
-    """A decay; energies in GeV, times in second, lengths in metre."""
+    """A decay; energies in GeV, times in second, lengths in metre.
+
+    >>> answer = client.decay("pi0 -> gamma gamma", momentum="1 GeV")
+    >>> answer.decay_class, kinegate.units.format_angle(answer.opening_angle.low)
+    ('ELECTROMAGNETIC', '15.374 deg')
+    """
 
     @property
     def text(self) -> str:

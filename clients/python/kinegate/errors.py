@@ -44,20 +44,44 @@ __all__ = [
 
 
 class KinegateError(Exception):
-    """The base of every exception of this package."""
+    """The base of every exception of this package.
+
+    >>> try:
+    ...     client.particle("graviton")
+    ... except kinegate.KinegateError as error:
+    ...     print(type(error).__name__)
+    NotFound
+    """
 
 
 class UsageError(KinegateError):
-    """The package was used in a way that would hang or corrupt: forks and event loops."""
+    """The package was used in a way that would hang or corrupt: forks and event loops.
+
+    >>> kinegate.connect_async(server.address)
+    Traceback (most recent call last):
+    kinegate.errors.UsageError: connect_async needs a running event loop: ...
+    """
 
 
 class StreamBroken(KinegateError):
-    """A judge stream broke and could not be resumed, or its server broke the protocol."""
+    """A judge stream broke and could not be resumed, or its server broke the protocol.
+
+    >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv")
+    >>> chosen = client.selection("../../testdata/selections/dimuon.yaml")
+    >>> with kinegate.connect("127.0.0.1:1") as nobody:
+    ...     list(nobody.judge(sample, chosen, patience=0.1))
+    Traceback (most recent call last):
+    kinegate.errors.StreamBroken: no verdict from 127.0.0.1:1 for 0.1 s: ...
+    """
 
 
 @dataclass(frozen=True)
 class FieldViolation:
-    """One field of a request that is at fault."""
+    """One field of a request that is at fault.
+
+    >>> client.check({"name": "no good"}).faults[0].field
+    'name'
+    """
 
     field: str
     """Path of the field, such as "reaction"."""
@@ -67,7 +91,14 @@ class FieldViolation:
 
 @dataclass(eq=False, repr=False)
 class ServerError(KinegateError):
-    """The answer of a server that is no result."""
+    """The answer of a server that is no result.
+
+    >>> try:
+    ...     client.reaction("gamma p -> p pi+")
+    ... except kinegate.ServerError as error:
+    ...     print(error.code, error.reason, error.retryable)
+    INVALID_ARGUMENT LAW_BROKEN False
+    """
 
     message: str
     """What is wrong, in words."""
@@ -99,27 +130,62 @@ class ServerError(KinegateError):
 
 
 class InvalidArgument(ServerError):
-    """A field is malformed or out of range, a name unknown, a conservation law broken."""
+    """A field is malformed or out of range, a name unknown, a conservation law broken.
+
+    >>> client.reaction("gamma p -> K+ Lamda")
+    Traceback (most recent call last):
+    kinegate.errors.InvalidArgument: ...
+    """
 
 
 class NotFound(ServerError):
-    """What was asked for by name is not known."""
+    """What was asked for by name is not known.
+
+    >>> client.particle("graviton")
+    Traceback (most recent call last):
+    kinegate.errors.NotFound: ...
+    """
 
 
 class FailedPrecondition(ServerError):
-    """The state does not allow the call: a channel closed, a digest gone, a protocol fault."""
+    """The state does not allow the call: a channel closed, a digest gone, a protocol fault.
+
+    >>> beam = {"beam_on_target": {"beam": {"even": {"min_gev": 1, "max_gev": 2}}}}
+    >>> client.generate({"initial_state": beam,
+    ...                  "channels": [{"reaction": "gamma p -> p J/psi"}]}, 1).read()
+    Traceback (most recent call last):
+    kinegate.errors.FailedPrecondition: ...
+    """
 
 
 class ResourceExhausted(ServerError):
-    """A message over its limit, work over its budget, a caller over its quota."""
+    """A message over its limit, work over its budget, a caller over its quota.
+
+    >>> client.particles("x" * 5_000_000)
+    Traceback (most recent call last):
+    kinegate.errors.ResourceExhausted: ...
+    """
 
 
 class Unavailable(ServerError):
-    """No server, or one that is overloaded or about to leave."""
+    """No server, or one that is overloaded or about to leave.
+
+    >>> generation = {"channels": [{"reaction": "pi0 -> gamma gamma"}]}
+    >>> with kinegate.connect("127.0.0.1:1") as nobody:
+    ...     nobody.generate(generation, 1, patience=0.1).read()
+    Traceback (most recent call last):
+    kinegate.errors.Unavailable: no word from a server at 127.0.0.1:1 for 3 s
+    """
 
 
 class DeadlineExceeded(ServerError):
-    """The answer did not come in time; maybe no server is there at all."""
+    """The answer did not come in time; maybe no server is there at all.
+
+    >>> with kinegate.connect("127.0.0.1:1", timeout=0.1) as nobody:
+    ...     nobody.particle("p")
+    Traceback (most recent call last):
+    kinegate.errors.DeadlineExceeded: no answer from a server at 127.0.0.1:1 ...
+    """
 
 
 class Cancelled(ServerError):
@@ -143,11 +209,24 @@ class Internal(ServerError):
 
 
 class BlockRejected(InvalidArgument):
-    """A block of events is structurally unsound; the stream goes on after it."""
+    """A block of events is structurally unsound; the stream goes on after it.
+
+    >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv").cut(0, 10)
+    >>> sample.offsets.flags.writeable = True
+    >>> sample.offsets[5] = 1  # an event would have fewer than no objects
+    >>> next(client.judge(sample, "../../testdata/selections/dimuon.yaml"))
+    Traceback (most recent call last):
+    kinegate.errors.BlockRejected: block 0 was rejected: ...
+    """
 
 
 class SelectionFaulty(InvalidArgument):
-    """A selection has faults; `violations` holds all of them."""
+    """A selection has faults; `violations` holds all of them.
+
+    >>> client.selection("../../testdata/selections/faulty.yaml")
+    Traceback (most recent call last):
+    kinegate.errors.SelectionFaulty: the selection has 3 faults: ...
+    """
 
 
 _KINDS: Final[Mapping[grpc.StatusCode, type[ServerError]]] = {

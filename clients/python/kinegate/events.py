@@ -65,6 +65,9 @@ class Events:
     """Events in columns; :meth:`of` is the convenient way to make them.
 
     A slice of events is again events and shares their columns.
+
+    >>> kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv")
+    <3000 events, 6000 objects in momentum_mass, with species_mask>
     """
 
     coordinates: str

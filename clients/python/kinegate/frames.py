@@ -125,11 +125,17 @@ def entries_table(verdicts: Verdicts) -> dict[str, NDArray[Any]]:
         "beam_row": entries.beam_row,
         "weight": entries.weight,
     }
+    for name in ("chi_square", "degrees_of_freedom", "probability"):
+        if (of_fit := getattr(entries, name)) is not None:
+            table[name] = of_fit
     for hypothesis in verdicts.hypotheses:
         for label in hypothesis.observables:
             column = table.setdefault(label, np.full(len(entries.weight), np.nan))
             found = verdicts.observable(hypothesis.name, label)
             column[found.entries] = found.values
+            if found.uncertainties is not None:
+                spread = table.setdefault(f"{label} uncertainty", np.full(len(column), np.nan))
+                spread[found.entries] = found.uncertainties
     return table
 
 

@@ -10,7 +10,11 @@ __all__ = ["Info", "info"]
 
 
 class Info(Answer[info_pb2.GetInfoResponse]):
-    """Versions, limits and selections of the server."""
+    """Versions, limits and selections of the server.
+
+    >>> client.info().caution
+    '...safety...'
+    """
 
     @property
     def version(self) -> str:

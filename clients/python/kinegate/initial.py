@@ -21,6 +21,10 @@ class Beams(TypedDict, total=False):
     A beam alone strikes a target at rest; two beams meet head on unless `angle` says
     otherwise. Energies are floats in GeV or texts with a unit; the total energy of a
     photon may also be given by its wavelength or frequency, such as "532 nm".
+
+    >>> arguments: kinegate.Beams = {"beam": "532 nm", "beam2": "150 GeV"}
+    >>> client.reaction("gamma gamma -> e+ e-", **arguments).is_open
+    True
     """
 
     beam: Quantity

@@ -18,7 +18,12 @@ __all__ = ["Motion", "motion"]
 
 
 class Motion(Answer[motion_pb2.ConvertMotionResponse]):
-    """How a particle moves; energies in GeV, None for what does not exist."""
+    """How a particle moves; energies in GeV, None for what does not exist.
+
+    >>> motion = client.motion("K+", momentum="1 GeV")
+    >>> round(motion.energy, 4), round(motion.beta, 4)
+    (1.1152, 0.8967)
+    """
 
     @property
     def energy(self) -> float:

@@ -22,7 +22,11 @@ _SHOWN = 40
 
 @dataclass(frozen=True)
 class OpenChannel:
-    """One final state; energies in GeV."""
+    """One final state; energies in GeV.
+
+    >>> client.open_channels("gamma p", beam="1.2 GeV")[0].name
+    '...'
+    """
 
     products: tuple[str, ...]
     """Names of the products, by mass."""
@@ -44,7 +48,12 @@ class OpenChannel:
 
 
 class OpenChannels(Answer[channels_pb2.ListOpenChannelsResponse]):
-    """The open channels at an energy, by the sum of their masses; a sequence."""
+    """The open channels at an energy, by the sum of their masses; a sequence.
+
+    >>> channels = client.open_channels("gamma p", beam="1.2 GeV", max_bodies=2)
+    >>> len(channels) == channels.total_count, channels.complete
+    (True, True)
+    """
 
     @property
     def channels(self) -> list[OpenChannel]:

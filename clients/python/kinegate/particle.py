@@ -16,7 +16,12 @@ __all__ = ["Particle", "Particles", "particle", "particles"]
 
 
 class Particle(Answer[particle_pb2.Particle]):
-    """One row of the particle table."""
+    """One row of the particle table.
+
+    >>> lambda0 = client.particle("Lambda")
+    >>> lambda0.mass, lambda0.charge, lambda0.spin
+    (1.115683, 0.0, 0.5)
+    """
 
     @property
     def name(self) -> str:
@@ -83,7 +88,11 @@ class Particle(Answer[particle_pb2.Particle]):
 
 
 class Particles(Answer[particle_pb2.ListParticlesResponse]):
-    """Rows of the particle table; a sequence."""
+    """Rows of the particle table; a sequence.
+
+    >>> [p.name for p in client.particles("eta")]
+    [...'eta'...]
+    """
 
     def __len__(self) -> int:
         return len(self.message.particles)

@@ -71,7 +71,14 @@ class Part:
 
 @dataclass(frozen=True)
 class BeamCandidates(Part):
-    """Tagged beam candidates, event after event."""
+    """Tagged beam candidates, event after event.
+
+    >>> tagged = kinegate.BeamCandidates(
+    ...     offsets=np.array([0, 2, 3], np.int32), energy_gev=np.array([1.2, 1.3, 2.0]),
+    ...     sigma_gev=np.full(3, 0.0014), time_ns=np.array([0.1, 7.0, -0.2]))
+    >>> tagged.cut(slice(0, 1), slice(0, 2)).energy_gev
+    array([1.2, 1.3])
+    """
 
     offsets: NDArray[np.int32]
     """First candidate of each event and the total at the end, shape (events + 1,)."""
@@ -98,7 +105,13 @@ class BeamCandidates(Part):
 
 @dataclass(frozen=True)
 class Vertices(Part):
-    """Event vertices."""
+    """Event vertices.
+
+    >>> vertex = kinegate.Vertices(
+    ...     x_m=np.zeros(2), y_m=np.zeros(2), z_m=np.array([0.01, -0.02]))
+    >>> vertex.cut(slice(1, 2), slice(2, 4)).z_m
+    array([-0.02])
+    """
 
     x_m: NDArray[np.float64]
     """x in metre, shape (events,)."""
@@ -122,7 +135,14 @@ class Vertices(Part):
 
 @dataclass(frozen=True)
 class VertexGroups(Part):
-    """Vertices of displaced decays, and which objects come from them."""
+    """Vertices of displaced decays, and which objects come from them.
+
+    >>> late = kinegate.VertexGroups(
+    ...     groups=np.array([0, 1, 1], np.int32), offsets=np.array([0, 1], np.int32),
+    ...     x_m=np.zeros(1), y_m=np.zeros(1), z_m=np.array([0.05]))
+    >>> late.groups  # the last two of three objects come from 5 cm downstream
+    array([0, 1, 1], dtype=int32)
+    """
 
     groups: NDArray[np.int32]
     """Group of each object, 0 for the event vertex, shape (objects,)."""
@@ -152,7 +172,13 @@ class VertexGroups(Part):
 
 @dataclass(frozen=True)
 class ClusterPositions(Part):
-    """Where objects hit the calorimeter; NaN where they did not."""
+    """Where objects hit the calorimeter; NaN where they did not.
+
+    >>> clusters = kinegate.ClusterPositions(
+    ...     x_m=np.array([0.3, np.nan]), y_m=np.array([0.4, np.nan]), z_m=np.array([0.9, np.nan]))
+    >>> clusters.cut(slice(0, 1), slice(0, 1)).z_m
+    array([0.9])
+    """
 
     x_m: NDArray[np.float64]
     """x in metre, shape (objects,)."""
@@ -174,7 +200,14 @@ class ClusterPositions(Part):
 
 @dataclass(frozen=True)
 class Polarisation(Part):
-    """Polarisation of the beam photon of each event."""
+    """Polarisation of the beam photon of each event.
+
+    >>> beam = kinegate.Polarisation(
+    ...     linear_degree=np.array([0.8]), plane_rad=np.array([0.0]),
+    ...     circular_degree=np.array([0.0]))
+    >>> beam.linear_degree
+    array([0.8])
+    """
 
     linear_degree: NDArray[np.float64]
     """Degree of linear polarisation within [0, 1], shape (events,)."""

@@ -25,7 +25,12 @@ A_co = TypeVar("A_co", covariant=True)
 
 @dataclass(frozen=True)
 class Question(Generic[A_co]):
-    """A request together with how its reply is read; `client.ask` takes it."""
+    """A request together with how its reply is read; `client.ask` takes it.
+
+    >>> question = kinegate.questions.reaction("gamma p -> p eta")
+    >>> question.method, client.ask(question).threshold
+    ('DescribeReaction', 0.7078...)
+    """
 
     service: str
     """Name of the service, such as "ReactionService"."""
@@ -43,6 +48,9 @@ class Answer(Generic[M]):
     """A reply with its numbers as plain floats in base units, shown as a table.
 
     `message` is the reply itself, for what the properties leave out.
+
+    >>> client.particle("p").message.mass_gev
+    0.93827208...
     """
 
     def __init__(self, message: M) -> None:

@@ -28,7 +28,12 @@ __all__ = ["Reaction", "reaction"]
 
 
 class Reaction(Answer[reaction_pb2.DescribeReactionResponse]):
-    """A reaction at an energy. Energies in GeV; None stands for what does not exist."""
+    """A reaction at an energy. Energies in GeV; None stands for what does not exist.
+
+    >>> answer = client.reaction("gamma p -> K+ Lambda", beam="1.2 GeV")
+    >>> answer.state, round(answer.excess_energy, 4), list(answer.products)
+    ('OPEN', 0.1604, ['K+', 'Lambda'])
+    """
 
     @property
     def text(self) -> str:

@@ -8,6 +8,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Any, Final
 
 from kinegate.errors import SelectionFaulty
+from kinegate.explanation import Explanation
 from kinegate.faults import Check, fill
 from kinegate.question import Question
 from kinegate.tables import Table
@@ -26,7 +27,11 @@ _ENTRIES: Final = ("none", "accepted", "all")
 
 @dataclass(frozen=True)
 class Hypothesis:
-    """How the server understood one hypothesis."""
+    """How the server understood one hypothesis.
+
+    >>> client.selection("../../testdata/selections/dimuon.yaml").hypotheses["Z"].products
+    ['mu+', 'mu-']
+    """
 
     name: str
     """Name."""
@@ -36,11 +41,18 @@ class Hypothesis:
     """References of all products, depth first: the meaning of an entry's assignment."""
     observables: list[str]
     """Labels of the recorded observables."""
+    degrees_of_freedom: int | None = None
+    """Degrees of freedom of the fit; None without a fit."""
 
 
 @dataclass(frozen=True)
 class Selection:
-    """A selection that a server has checked, or the name of one that it knows."""
+    """A selection that a server has checked, or the name of one that it knows.
+
+    >>> chosen = client.selection("../../testdata/selections/dimuon.yaml")
+    >>> list(chosen.hypotheses), len(chosen.digest)
+    (['dimuon', 'Z', 'equal-plus', 'equal-minus'], 64)
+    """
 
     source: selection_pb2.SelectionSource
     """What is sent to judge with it."""
@@ -74,6 +86,18 @@ class Selection:
             )
 
         return Question("SelectionService", "JudgeBlock", request, read)
+
+    def explaining(self, events: Events, event: int, most: int) -> Question[Explanation]:
+        """Make the question that lays the verdict on one event open."""
+        if not -len(events) <= event < len(events):
+            raise IndexError(f"event {event} of {len(events)}")
+        row = event % len(events)
+        request = selection_pb2.ExplainVerdictRequest(
+            selection=self.source,
+            block=events.cut(row, row + 1).to_message(),
+            max_assignment_count=most,
+        )
+        return Question("SelectionService", "ExplainVerdict", request, lambda r: Explanation(r[0]))
 
 
 SelectionLike = str | Path | Mapping[str, Any] | selection_pb2.Selection | Selection
@@ -132,7 +156,13 @@ def check(source: SelectionLike) -> Question[SelectionCheck]:
 def outline(messages: Sequence[selection_pb2.HypothesisOutline]) -> dict[str, Hypothesis]:
     """Read how hypotheses were understood."""
     return {
-        m.name: Hypothesis(m.name, m.reaction, list(m.products), list(m.observables))
+        m.name: Hypothesis(
+            m.name,
+            m.reaction,
+            list(m.products),
+            list(m.observables),
+            m.degrees_of_freedom if m.HasField("degrees_of_freedom") else None,
+        )
         for m in messages
     }
 

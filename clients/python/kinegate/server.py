@@ -28,7 +28,12 @@ _KEPT_LINES: Final = 200
 
 
 class LocalServer:
-    """A running `kinegate serve` that belongs to this process; it ends with it."""
+    """A running `kinegate serve` that belongs to this process; it ends with it.
+
+    >>> with kinegate.start_server() as local:
+    ...     local.address
+    '127.0.0.1:...'
+    """
 
     def __init__(self, command: Sequence[str], wait: float) -> None:
         self.process = subprocess.Popen(  # noqa: S603  # the program that the caller named
@@ -155,7 +160,11 @@ def start_server(
 
 
 def find_program(program: str | PathLike[str] | None = None) -> str:
-    """Return the path of the `kinegate` program, or say how to get it."""
+    """Return the path of the `kinegate` program, or say how to get it.
+
+    >>> kinegate.find_program().endswith("kinegate")
+    True
+    """
     wanted = os.fspath(program or os.environ.get("KINEGATE") or "kinegate")
     found = shutil.which(wanted)
     if found is None:

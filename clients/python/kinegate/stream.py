@@ -35,6 +35,12 @@ class JudgeStream:
     """An iterator of (block, verdict) pairs in the order of the blocks.
 
     `Client.judge` makes it. Leaving the loop early, or the `with` block, ends the stream.
+
+    >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv")
+    >>> selection = "../../testdata/selections/dimuon.yaml"
+    >>> stream = client.judge(sample, selection, events_per_block=1500)
+    >>> [int(verdict.gate.sum()) for block, verdict in stream], stream.reconnects
+    ([1500, 1500], 0)
     """
 
     def __init__(
@@ -112,6 +118,8 @@ class _Pump:
         self.protocol = Protocol(settings)
         self._target = target
         self._changed = threading.Condition()
+        # Apart from the condition, so that the clock does not wake with every frame.
+        self._stopped = threading.Event()
         self._taken: deque[tuple[Events, verdict_pb2.VerdictBlock]] = deque()
         self._error: BaseException | None = None
         self._ended = False
@@ -127,6 +135,7 @@ class _Pump:
     def close(self) -> None:
         with self._changed:
             self._closed = True
+            self._stopped.set()
             call = self._call
             self._changed.notify_all()
         if call is not None:
@@ -149,6 +158,7 @@ class _Pump:
         with self._changed:
             self._error = self._error or error
             self._ended = True
+            self._stopped.set()
             self._changed.notify_all()
 
     def _feed(self, blocks: Iterator[Events]) -> None:
@@ -255,11 +265,8 @@ class _Pump:
 
     def _watch(self) -> None:
         """Give a silent connection up: a transport does not notice a frozen peer."""
-        while True:
+        while not self._stopped.wait(_TICK):
             with self._changed:
-                self._changed.wait_for(self._over, _TICK)
-                if self._over():
-                    return
                 call = self._call
                 if call is None or not self.protocol.dead(time.monotonic()):
                     continue

@@ -31,7 +31,13 @@ _FIELDS: Final = {
 
 
 class Stubs:
-    """One generated stub a service; on an asyncio channel their calls are awaited."""
+    """One generated stub a service; on an asyncio channel their calls are awaited.
+
+    >>> from kinegate.v1 import particle_pb2
+    >>> request = particle_pb2.GetParticleRequest(name="p")
+    >>> client.stubs.particle.GetParticle(request, timeout=10).particle.mass_gev
+    0.93827208...
+    """
 
     def __init__(self, channel: grpc.Channel | grpc.aio.Channel) -> None:
         # The generated stubs take either kind of channel; the types tell them apart.

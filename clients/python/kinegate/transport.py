@@ -46,8 +46,10 @@ _SERVICE_CONFIG: Final = {
                     {"service": "kinegate.v1.GenerationService", "method": name}
                     for name in ("CheckGeneration", "CheckDetector", "MeasureBound")
                 ),
-                {"service": "kinegate.v1.SelectionService", "method": "CheckSelection"},
-                {"service": "kinegate.v1.SelectionService", "method": "JudgeBlock"},
+                *(
+                    {"service": "kinegate.v1.SelectionService", "method": name}
+                    for name in ("CheckSelection", "JudgeBlock", "ExplainVerdict")
+                ),
             ],
             "waitForReady": True,
             "retryPolicy": {

@@ -37,7 +37,12 @@ _VARIABLES: Final[dict[str, tuple[str, Callable[[Quantity], float]]]] = {
 
 
 class TwoBody(Answer[twobody_pb2.SolveTwoBodyResponse]):
-    """Limits of both products and a solution for each value asked for."""
+    """Limits of both products and a solution for each value asked for.
+
+    >>> answer = client.two_body("gamma p -> K+ Lambda", beam="1.2 GeV")
+    >>> kinegate.units.format_angle(answer.largest_angles["Lambda"])
+    '27.105 deg'
+    """
 
     @property
     def state(self) -> str:
@@ -116,6 +121,10 @@ def two_body(
             "rest_angle" or "rest_cosine" in the centre of mass, "energy", "kinetic" or
             "momentum" in the laboratory, "t" or "t_prime" in GeV squared.
         beams: How the initial particles move, see :class:`kinegate.initial.Beams`.
+
+    >>> answer = client.two_body("gamma p -> p pi0", beam="1.2 GeV", given={"rest_cosine": [0]})
+    >>> answer.column("laboratory_momentum_gev")
+    array([0.989...])
     """
     request = twobody_pb2.SolveTwoBodyRequest(reaction=text, product=product)
     request.initial_state.CopyFrom(initial_state(text, beams))

@@ -11,7 +11,7 @@ from kinegate import columns, frames
 from kinegate.errors import BlockRejected, FieldViolation
 from kinegate.parts import join_offsets
 from kinegate.tables import Table
-from kinegate.v1 import verdict_pb2
+from kinegate.v1 import fit_pb2, verdict_pb2
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -20,11 +20,15 @@ if TYPE_CHECKING:
 
     from kinegate.selection import Hypothesis
 
-__all__ = ["Entries", "Observable", "Verdicts"]
+__all__ = ["Entries", "Fits", "Observable", "Verdicts"]
 
 _EXPIRED: Final = int(verdict_pb2.EVENT_STATUS_EXPIRED)
 _STATUS_NAMES: Final = np.array(
     [name.removeprefix("EVENT_STATUS_") for name in verdict_pb2.EventStatus.keys()],  # noqa: SIM118
+    object,
+)
+_FIT_STATUS_NAMES: Final = np.array(
+    [name.removeprefix("FIT_STATUS_") for name in fit_pb2.FitStatus.keys()],  # noqa: SIM118
     object,
 )
 
@@ -34,6 +38,11 @@ class Entries:
     """One row for each combination of event, hypothesis and beam candidate.
 
     Columns of shape (entries,) unless said otherwise; most of them view the reply.
+
+    >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv").cut(0, 100)
+    >>> entries = client.judge_block(sample, "../../testdata/selections/dimuon.yaml").entries
+    >>> entries.offsets[:3], entries.accepted.all()
+    (array([0, 2, 4], dtype=int32), ...True...)
     """
 
     offsets: NDArray[np.int32]
@@ -56,6 +65,20 @@ class Entries:
     """First observable of each entry and the total, shape (entries + 1,)."""
     observables: NDArray[np.float64]
     """Recorded values in the unit of the observable; NaN means not computed."""
+    uncertainties: NDArray[np.float64] | None = None
+    """Standard deviations of the observables; None unless a hypothesis asks for them."""
+    fit_failed: NDArray[np.bool_] | None = None
+    """The best assignment was not accepted because its fit failed; None without fits."""
+    fit_statuses: NDArray[np.uint8] | None = None
+    """How each fit ended, numbers of FitStatus, 0 without one; None without fits."""
+    chi_square: NDArray[np.float64] | None = None
+    """Chi-square, the minimum only where the fit converged; None without fits."""
+    degrees_of_freedom: NDArray[np.int16] | None = None
+    """Degrees of freedom of each fit; None without fits."""
+    probability: NDArray[np.float64] | None = None
+    """Probability of a larger chi-square, NaN unless converged; None without fits."""
+    iterations: NDArray[np.int16] | None = None
+    """Steps of each fit; None without fits."""
 
     @property
     def events(self) -> NDArray[np.intp]:
@@ -65,10 +88,43 @@ class Entries:
 
 @dataclass(frozen=True)
 class Observable:
-    """A recorded observable: one value for each entry of a hypothesis."""
+    """A recorded observable: one value for each entry of a hypothesis.
+
+    >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv").cut(0, 100)
+    >>> verdict = client.judge_block(sample, "../../testdata/selections/dimuon.yaml")
+    >>> mass = verdict.observable("Z", "M")
+    >>> bool((mass.values >= 80).all()), len(mass.values) == len(mass.weights)
+    (True, True)
+    """
 
     values: NDArray[np.float64]
     """Values in the unit of the observable (GeV, GeV squared, radian, ns, m)."""
+    weights: NDArray[np.float64]
+    """Weights of the entries."""
+    events: NDArray[np.intp]
+    """Rows of the events, to look up what belongs to them."""
+    entries: NDArray[np.intp]
+    """Rows of the entries."""
+    uncertainties: NDArray[np.float64] | None = None
+    """Standard deviations of the values; None unless a hypothesis asks for them."""
+
+
+@dataclass(frozen=True)
+class Fits:
+    """The fits of a hypothesis: one row for each of its entries."""
+
+    chi_square: NDArray[np.float64]
+    """Chi-square; the minimum only where the fit converged."""
+    degrees_of_freedom: NDArray[np.int16]
+    """Degrees of freedom."""
+    probability: NDArray[np.float64]
+    """Probability of a larger chi-square; NaN unless the fit converged."""
+    converged: NDArray[np.bool_]
+    """The fit found its minimum."""
+    status_names: NDArray[np.object_]
+    """How each fit ended in words, such as "CONVERGED"."""
+    iterations: NDArray[np.int16]
+    """Steps of each fit."""
     weights: NDArray[np.float64]
     """Weights of the entries."""
     events: NDArray[np.intp]
@@ -79,7 +135,13 @@ class Observable:
 
 @dataclass(frozen=True, eq=False)
 class Verdicts:
-    """The verdicts on events; columns of shape (events,)."""
+    """The verdicts on events; columns of shape (events,).
+
+    >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv").cut(0, 100)
+    >>> verdict = client.judge_block(sample, "../../testdata/selections/dimuon.yaml")
+    >>> len(verdict), verdict.accepted["dimuon"].sum()
+    (100, ...100...)
+    """
 
     hypotheses: list[Hypothesis]
     """The hypotheses of the selection, in its order."""
@@ -204,21 +266,51 @@ class Verdicts:
         >>> bool(abs(mass.values / sample.extra["M"][mass.events] - 1).max() < 1e-4)
         True
         """
+        entries, index = self._entries_of(hypothesis)
+        labels = self.hypotheses[index].observables
+        if label not in labels:
+            known = ", ".join(labels) or "none"
+            raise KeyError(f"{hypothesis!r} records no observable {label!r}; recorded: {known}")
+        rows = np.flatnonzero(entries.hypothesis == index)
+        places = entries.observable_offsets[rows] + labels.index(label)
+        spreads = None if entries.uncertainties is None else entries.uncertainties[places]
+        return Observable(
+            entries.observables[places], entries.weight[rows], entries.events[rows], rows, spreads
+        )
+
+    def fits(self, hypothesis: str) -> Fits:
+        """Return the fits of a hypothesis, one for each of its entries."""
+        entries, index = self._entries_of(hypothesis)
+        if (
+            self.hypotheses[index].degrees_of_freedom is None
+            or entries.fit_statuses is None
+            or entries.chi_square is None
+            or entries.degrees_of_freedom is None
+            or entries.probability is None
+            or entries.iterations is None
+        ):
+            raise KeyError(f"{hypothesis!r} has no fit")
+        rows = np.flatnonzero(entries.hypothesis == index)
+        statuses = entries.fit_statuses[rows]
+        return Fits(
+            entries.chi_square[rows],
+            entries.degrees_of_freedom[rows],
+            entries.probability[rows],
+            statuses == int(fit_pb2.FIT_STATUS_CONVERGED),
+            _FIT_STATUS_NAMES[statuses],
+            entries.iterations[rows],
+            entries.weight[rows],
+            entries.events[rows],
+            rows,
+        )
+
+    def _entries_of(self, hypothesis: str) -> tuple[Entries, int]:
         if self.entries is None:
             raise ValueError("no entries came along; judge with entries='accepted' or 'all'")
         names = [h.name for h in self.hypotheses]
         if hypothesis not in names:
             raise KeyError(f"no hypothesis {hypothesis!r}; known: {', '.join(names)}")
-        index = names.index(hypothesis)
-        labels = self.hypotheses[index].observables
-        if label not in labels:
-            known = ", ".join(labels) or "none"
-            raise KeyError(f"{hypothesis!r} records no observable {label!r}; recorded: {known}")
-        rows = np.flatnonzero(self.entries.hypothesis == index)
-        values = self.entries.observables[
-            self.entries.observable_offsets[rows] + labels.index(label)
-        ]
-        return Observable(values, self.entries.weight[rows], self.entries.events[rows], rows)
+        return self.entries, names.index(hypothesis)
 
     def to_pandas(self) -> Any:
         """Return a pandas DataFrame of the events: status, gate, acceptance, best."""
@@ -263,12 +355,34 @@ def _entries(message: verdict_pb2.EntryColumns) -> Entries:
         columns.view(message.assignments, np.int16),
         columns.view(message.observable_offsets, np.int32),
         columns.view(message.observables, np.float64),
+        **_fit_columns(message),
     )
 
 
+def _fit_columns(message: verdict_pb2.EntryColumns) -> dict[str, NDArray[Any]]:
+    """View the columns that are there only where a hypothesis of the selection asks for them."""
+    found: dict[str, NDArray[Any]] = {}
+    if message.HasField("observable_uncertainties"):
+        found["uncertainties"] = columns.view(message.observable_uncertainties, np.float64)
+    if message.HasField("fits"):
+        fits = message.fits
+        failed = int(verdict_pb2.ENTRY_STATUS_FIT_FAILED)
+        found |= {
+            "fit_failed": np.equal(columns.view(message.statuses, np.uint8), failed),
+            "fit_statuses": columns.view(fits.statuses, np.uint8),
+            "chi_square": columns.view(fits.chi_squares, np.float64),
+            "degrees_of_freedom": columns.view(fits.degrees_of_freedom, np.int16),
+            "probability": columns.view(fits.probabilities, np.float64),
+            "iterations": columns.view(fits.iterations, np.int16),
+        }
+    return found
+
+
 def _joined(parts: Sequence[Entries]) -> Entries:
-    joined: dict[str, NDArray[Any]] = {}
+    joined: dict[str, Any] = {}
     for name in Entries.__dataclass_fields__:
-        found = [getattr(p, name) for p in parts]
-        joined[name] = join_offsets(found) if name.endswith("offsets") else np.concatenate(found)
+        found = [column for p in parts if (column := getattr(p, name)) is not None]
+        if len(found) == len(parts):
+            join = join_offsets if name.endswith("offsets") else np.concatenate
+            joined[name] = join(found)
     return Entries(**joined)
