@@ -38,6 +38,9 @@ func (c *Config) Validate() error {
 		l.size("vertex.sigma_y_m", d.SigmaYM)
 		l.size("vertex.sigma_z_m", d.SigmaZM)
 	}
+	if d := c.Displaced; d != nil {
+		d.check(&l)
+	}
 	return l.list.Err()
 }
 

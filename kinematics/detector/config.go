@@ -29,6 +29,8 @@ type Config struct {
 	Tagger *Tagger
 	// Vertex measures the interaction point.
 	Vertex *Vertex
+	// Displaced finds the points where particles decayed in flight.
+	Displaced *Displaced
 }
 
 // Polar is a range of the polar angle, 0 < Min < Max < pi.
@@ -146,4 +148,16 @@ type Tagger struct {
 // Vertex measures the interaction point.
 type Vertex struct {
 	SigmaXM, SigmaYM, SigmaZM float64
+}
+
+// Displaced finds the point of a decay in flight that at least two measured
+// tracks come from. The tracks then carry its vertex group; all other objects
+// belong to the event's vertex.
+type Displaced struct {
+	// DistanceMinM is the lowest true distance from the interaction point.
+	DistanceMinM float64
+	// SigmaXM, SigmaYM and SigmaZM are the resolutions.
+	SigmaXM, SigmaYM, SigmaZM float64
+	// Efficiency of finding such a point.
+	Efficiency float64
 }

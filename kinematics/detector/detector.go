@@ -2,6 +2,7 @@ package detector
 
 import (
 	"math"
+	"slices"
 
 	"example.org/kinegate/kinematics/event"
 	"example.org/kinegate/kinematics/momentum"
@@ -35,6 +36,11 @@ type Labels struct {
 func (d *Detector) Measure(truth *event.Truth, block *event.Block, labels *Labels) {
 	w := worker{config: &d.config, stream: random.New(d.config.Seed, random.Detection, 0)}
 	d.reset(block)
+	if p := truth.Polarisation; p != nil { // known without measuring
+		block.Polarisation = &event.Polarisation{
+			Linear: slices.Clone(p.Linear), PlaneRad: slices.Clone(p.PlaneRad), Circular: slices.Clone(p.Circular),
+		}
+	}
 	if labels != nil {
 		labels.Particle = labels.Particle[:0]
 	}
@@ -55,6 +61,9 @@ func (d *Detector) Measure(truth *event.Truth, block *event.Block, labels *Label
 		if block.Vertex != nil {
 			w.vertex(truth, i, block.Vertex)
 		}
+		if block.Groups != nil {
+			w.displaced(truth, i, block.Groups)
+		}
 	}
 }
 
@@ -68,7 +77,7 @@ type worker struct {
 
 // measure fills the objects of one event. The order of its draws is frozen:
 // charged and neutral particles in the order of the truth, then clusters,
-// noise, beam candidates and vertex.
+// noise, beam candidates, vertex and displaced vertices.
 func (w *worker) measure(truth *event.Truth, i int) {
 	w.clusters, w.objects = w.clusters[:0], w.objects[:0]
 	first, end := truth.Particles(i)
@@ -169,6 +178,17 @@ func (d *Detector) reset(b *event.Block) {
 		v.Packed = v.Packed[:0]
 		*b.Vertex = event.Vertex{
 			Positions:  event.Positions{X: b.Vertex.X[:0], Y: b.Vertex.Y[:0], Z: b.Vertex.Z[:0]},
+			Covariance: v,
+		}
+	}
+	if d.config.Displaced != nil {
+		b.Groups = kept(old.Groups)
+		g := b.Groups
+		v := kept(g.Covariance)
+		v.Packed = v.Packed[:0]
+		*g = event.Groups{
+			OfObject: g.OfObject[:0], Offsets: append(g.Offsets[:0], 0),
+			Position:   event.Positions{X: g.Position.X[:0], Y: g.Position.Y[:0], Z: g.Position.Z[:0]},
 			Covariance: v,
 		}
 	}

@@ -404,6 +404,7 @@ func TestValidateListsEveryFault(t *testing.T) {
 	c.Recoil.Theta.MinRad = -1
 	c.Tagger.EdgesGeV[7] = 0
 	c.Vertex = &detector.Vertex{SigmaZM: math.Inf(1)}
+	c.Displaced = &detector.Displaced{DistanceMinM: -1, SigmaXM: 1, SigmaYM: 1, Efficiency: 2}
 	_, err := detector.New(c)
 	var list fault.List
 	if !errors.As(err, &list) {
@@ -417,6 +418,7 @@ func TestValidateListsEveryFault(t *testing.T) {
 		"calorimeter.theta.max_rad", "calorimeter.threshold_gev", "calorimeter.efficiency", "calorimeter.split_off.max_share",
 		"tracker.angle_sigma_rad", "tracker.confusions[0].from", "tracker.confusions[2].probability",
 		"recoil.theta.min_rad", "tagger.edges_gev[7]", "vertex.sigma_z_m",
+		"displaced.distance_min_m", "displaced.sigma_z_m", "displaced.efficiency",
 	}
 	if !slices.Equal(got, want) {
 		t.Errorf("faults\n%v, want\n%v", got, want)

@@ -48,6 +48,20 @@ type Truth struct {
 	BeamEnergyGeV []float64
 	// BeamTimeNS is its true time minus the event's.
 	BeamTimeNS []float64
+
+	// Polarisation of each event's beam photon; nil: unpolarised.
+	Polarisation *Polarisation
+}
+
+// Polarise appends the polarisation of the beam photon of one event.
+func (t *Truth) Polarise(linear, planeRad, circular float64) {
+	if t.Polarisation == nil {
+		t.Polarisation = &Polarisation{}
+	}
+	p := t.Polarisation
+	p.Linear = append(p.Linear, linear)
+	p.PlaneRad = append(p.PlaneRad, planeRad)
+	p.Circular = append(p.Circular, circular)
 }
 
 // Events is the number of events.
@@ -66,6 +80,10 @@ func (t *Truth) Reset() {
 		Origin: t.Origin.emptied(), ProperTimeS: t.ProperTimeS[:0],
 		BeamOffsets:   append(t.BeamOffsets[:0], 0),
 		BeamEnergyGeV: t.BeamEnergyGeV[:0], BeamTimeNS: t.BeamTimeNS[:0],
+		Polarisation: t.Polarisation,
+	}
+	if p := t.Polarisation; p != nil {
+		*p = Polarisation{Linear: p.Linear[:0], PlaneRad: p.PlaneRad[:0], Circular: p.Circular[:0]}
 	}
 }
 

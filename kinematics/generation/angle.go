@@ -42,6 +42,9 @@ type angle struct {
 	cosTheta, phi *inverse
 	slope         float64
 	law           AngularLaw
+	// analysed is the product of polarisation and asymmetry, plane that of the
+	// polarisation.
+	analysed, plane float64
 }
 
 func newAngle(a *Angle) *angle {
@@ -53,6 +56,31 @@ func newAngle(a *Angle) *angle {
 		made.phi = newInverse(a.Phi)
 	}
 	return made
+}
+
+// analyse sets the polarisation that the azimuth shows.
+func (a *angle) analyse(p Polarisation, asymmetry float64) {
+	a.analysed, a.plane = p.Linear*asymmetry, p.PlaneRad
+}
+
+// azimuth draws the product's azimuth.
+func (a *angle) azimuth(s *random.Stream) float64 {
+	u := s.Uniform()
+	switch {
+	case a.phi != nil:
+		return a.phi.at(u)
+	case a.analysed == 0:
+		return azimuth(u)
+	}
+	top := 1 + math.Abs(a.analysed)
+	for range MaxAttempts {
+		phi := azimuth(u)
+		if float64(s.Uniform()*top) < 1-float64(a.analysed*num.Cos(2*(phi-a.plane))) {
+			return phi
+		}
+		u = s.Uniform()
+	}
+	return azimuth(u) // not reached: at least half are accepted
 }
 
 // acceptance is the integral of exp(b t') over the sphere relative to an
@@ -69,11 +97,7 @@ func (a *angle) acceptance(p, pOut float64) float64 {
 // direction draws the product's direction in the centre of mass for the
 // momentum pOut: the azimuth first.
 func (a *angle) direction(s *random.Stream, st *state, pOut float64) momentum.Three {
-	u := s.Uniform()
-	phi := azimuth(u)
-	if a.phi != nil {
-		phi = a.phi.at(u)
-	}
+	phi := a.azimuth(s)
 	versine := a.versine(s, st, pOut)
 	return around(st.axis, 1-versine, math.Sqrt(max(0, versine*(2-versine))), phi)
 }

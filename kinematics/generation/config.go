@@ -23,6 +23,34 @@ type Config struct {
 	Target Region
 	// Accidentals are tagged beam candidates that did not interact.
 	Accidentals Accidentals
+	// Polarisation of the first beam's photons.
+	Polarisation Polarisation
+}
+
+// Polarisation of beam photons, the same for every event.
+type Polarisation struct {
+	// Linear is the degree of linear polarisation, 0 to 1, and PlaneRad the azimuth
+	// of its plane from the x axis, -pi to pi.
+	Linear, PlaneRad float64
+	// Circular is the signed degree of circular polarisation, -1 to 1, positive for
+	// positive helicity; it shapes nothing here.
+	Circular float64
+}
+
+func (p Polarisation) faults(list fault.List) fault.List {
+	if !(p.Linear >= 0 && p.Linear <= 1) {
+		list = append(list, fault.Number("polarisation.linear_degree", p.Linear, "0 to 1"))
+	}
+	if !(math.Abs(p.PlaneRad) <= math.Pi) {
+		list = append(list, fault.Number("polarisation.plane_rad", p.PlaneRad, "-pi to pi"))
+	}
+	if !(math.Abs(p.Circular) <= 1) {
+		list = append(list, fault.Number("polarisation.circular_degree", p.Circular, "-1 to 1"))
+	}
+	if p.Linear <= 1 && !(float64(p.Linear*p.Linear)+float64(p.Circular*p.Circular) <= 1+0x1p-50) {
+		list = append(list, fault.Number("polarisation.circular_degree", p.Circular, "a degree that with the linear one makes at most 1 in quadrature"))
+	}
+	return list
 }
 
 // Channel is one reaction of the mixture.
@@ -58,6 +86,9 @@ const (
 	PhaseSpaceRate
 	// CurveRate is a curve over sqrt(s) in GeV; zero outside its points.
 	CurveRate
+	// LawRate is the total cross-section of the law of the channel's Angle. Not for
+	// an initial state without beams.
+	LawRate
 	energyKinds
 )
 
@@ -84,6 +115,12 @@ type Angle struct {
 	SlopePerGeV2 float64
 	// Law is a distribution of quantum electrodynamics, for two products.
 	Law AngularLaw
+	// Asymmetry is S, -1 to 1, in the density of the azimuth
+	//
+	//	1 - P S cos(2 (phi - phi_plane))
+	//
+	// for the degree P of linear polarisation and its plane; 0 where Phi is given.
+	Asymmetry float64
 }
 
 // Region is where interactions happen: uniform along z, Gaussian across.
@@ -129,6 +166,7 @@ func (c *Config) Validate() error {
 	if len(c.Channels) > 1 && !(sum > 0) {
 		list = append(list, fault.Number("channels.fraction", sum, "a sum > 0"))
 	}
+	list = c.Polarisation.faults(list)
 	r := c.Target
 	for _, v := range []struct {
 		name  string
@@ -176,6 +214,9 @@ func (c *Channel) faults(list fault.List, field string) fault.List {
 	if a := c.Angle; a != nil {
 		list = a.faults(list, field+".angle", len(c.Products))
 	}
+	if c.Energy.Kind == LawRate && (c.Angle == nil || c.Angle.Law == NoLaw) {
+		list = append(list, fault.New(fault.Invalid, field+".energy.kind", "LawRate", "only with a law of the angle"))
+	}
 	return list
 }
 
@@ -199,6 +240,12 @@ func (a *Angle) faults(list fault.List, field string, products int) fault.List {
 		list = append(list, fault.New(fault.Invalid, field+".law", law, "0 where cos_theta or slope_per_gev2 is given"))
 	case a.Law != NoLaw && products != 2:
 		list = append(list, fault.New(fault.Invalid, field+".law", law, "0 for other than two products"))
+	}
+	switch {
+	case !(math.Abs(a.Asymmetry) <= 1):
+		list = append(list, fault.Number(field+".asymmetry", a.Asymmetry, "-1 to 1"))
+	case a.Asymmetry != 0 && a.Phi != nil:
+		list = append(list, fault.Number(field+".asymmetry", a.Asymmetry, "0 where phi is given"))
 	}
 	if a.Phi != nil {
 		list = a.Phi.faults(list, field+".phi", -math.Pi, math.Pi)

@@ -2,6 +2,7 @@ package generation
 
 import (
 	"math"
+	"sort"
 	"strconv"
 
 	"example.org/kinegate/kinematics/fault"
@@ -33,12 +34,12 @@ func (c *Curve) faults(list fault.List, field string, low, high float64) fault.L
 
 // At is the curve's value at x, 0 outside its points.
 func (c *Curve) At(x float64) float64 {
-	for i := 1; i < len(c.X); i++ {
-		if x >= c.X[i-1] && x <= c.X[i] {
-			return between(c.Y[i-1], c.Y[i], (x-c.X[i-1])/(c.X[i]-c.X[i-1]))
-		}
+	last := len(c.X) - 1
+	if last < 1 || !(x >= c.X[0] && x <= c.X[last]) {
+		return 0
 	}
-	return 0
+	i := max(1, sort.SearchFloat64s(c.X, x)) // the first point not below x
+	return between(c.Y[i-1], c.Y[i], (x-c.X[i-1])/(c.X[i]-c.X[i-1]))
 }
 
 // inverse draws from a Curve by the inverse of its integral.

@@ -2,6 +2,7 @@ package generation
 
 import (
 	"math"
+	"slices"
 	"strconv"
 
 	"example.org/kinegate/kinematics/event"
@@ -73,6 +74,16 @@ func (g *Generator) open(p *plan) *fault.Error {
 func (g *Generator) prepare(p *plan) {
 	low, high := g.source.limits()
 	low = max(low, p.threshold)
+	p.rate = p.channel.Energy.Curve
+	if p.channel.Energy.Kind == LawRate {
+		p.rate = lawCurve(p.channel.Angle.Law, leptonOf(p.channel, g.config.Initial), low, high)
+	}
+	if p.rate != nil {
+		p.rateTop = slices.Max(p.rate.Y)
+	}
+	if p.angle != nil {
+		p.angle.analyse(g.config.Polarisation, p.channel.Angle.Asymmetry)
+	}
 	if p.channel.Energy.Kind == PhaseSpaceRate {
 		p.joint = g.jointCeiling(p, low, high)
 	}

@@ -110,3 +110,77 @@ func TestLaserBackscatter(t *testing.T) {
 		t.Error("a beam without energy passes")
 	}
 }
+
+// The energies of a wide photon beam follow the total cross-section, that of the
+// handbook formulas in the package photon, and weighted events follow it too.
+func TestLawRates(t *testing.T) {
+	const light = 1e-3
+	pair := Config{
+		Seed: 45,
+		Initial: CollidingBeams{
+			First: Beam{Spectrum: Flat{LowGeV: 1e-4, HighGeV: 5e-3}}, Second: Beam{Spectrum: Fixed{light}}, AngleRad: math.Pi,
+		},
+		Channels: []Channel{{
+			Products: []Product{{Number: 11, MassGeV: mElectron}, {Number: -11, MassGeV: mElectron}},
+			Angle:    &Angle{Law: PairCreation}, Energy: EnergyShape{Kind: LawRate},
+		}},
+	}
+	pairDensity := func(e float64) float64 {
+		p, err := photon.PairEnergyFromPhotons(e, light, math.Pi, mElectron)
+		if err != nil || !(p.Excess() > 0) {
+			return 0
+		}
+		return p.Total(photon.Lepton).Unpolarised
+	}
+	compton := Config{
+		Seed:    46,
+		Initial: FixedTarget{Beam: Beam{Spectrum: Flat{LowGeV: 1e-5, HighGeV: 1e-2}}, TargetMassGeV: mElectron},
+		Channels: []Channel{{
+			Products: []Product{{Number: 22}, {Number: 11, MassGeV: mElectron}},
+			Angle:    &Angle{Law: ComptonScattering}, Energy: EnergyShape{Kind: LawRate},
+		}},
+	}
+	positron := Config{
+		Seed:    47,
+		Initial: FixedTarget{Beam: Beam{MassGeV: mElectron, Spectrum: Flat{LowGeV: 1e-3, HighGeV: 1e-2}}, TargetMassGeV: mElectron},
+		Channels: []Channel{{
+			Products: []Product{{Number: 22}, {Number: 22}}, Angle: &Angle{Law: Annihilation}, Energy: EnergyShape{Kind: LawRate},
+		}},
+	}
+	for _, c := range []struct {
+		name      string
+		config    Config
+		low, high float64
+		density   func(e float64) float64
+	}{
+		{"pair creation", pair, 1e-4, 5e-3, pairDensity},
+		{"Compton scattering", compton, 1e-5, 1e-2, func(e float64) float64 { return photon.KleinNishinaTotal(e / mElectron) }},
+		{"annihilation", positron, 1e-3, 1e-2, func(e float64) float64 {
+			p, err := photon.PairEnergyFromSqrtS(math.Sqrt(2*mElectron*(mElectron+e)), mElectron)
+			if err != nil {
+				t.Fatal(err)
+			}
+			return p.AnnihilationTotal()
+		}},
+	} {
+		t.Run(c.name, func(t *testing.T) {
+			cumulative := cumulated(c.low, c.high, c.density)
+			follows(t, sample(t, c.config, 20_000, func(truth *event.Truth, i, _ int) float64 {
+				return truth.BeamEnergyGeV[truth.BeamOffsets[i]]
+			}), cumulative)
+			c.config.Weighted = true
+			truth, stats := fill(t, generator(t, c.config), 0, 40_000)
+			half, sum, square := 0.0, 0.0, 0.0
+			for i, w := range truth.Weight {
+				sum += w
+				square += w * w
+				if cumulative(truth.BeamEnergyGeV[truth.BeamOffsets[i]]) < 0.5 {
+					half += w
+				}
+			}
+			if d := (half/sum - 0.5) / (0.5 * math.Sqrt(square) / sum); math.Abs(d) > 5 {
+				t.Errorf("%v of the weight below the median, %.1f standard errors off; %+v", half/sum, d, stats)
+			}
+		})
+	}
+}

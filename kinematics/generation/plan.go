@@ -46,8 +46,10 @@ type plan struct {
 	// joint is the ceiling of the whole weight over all energies, for
 	// PhaseSpaceRate.
 	joint float64
-	// curveTop is the highest point of the energy curve.
-	curveTop float64
+	// rate is the energy curve of CurveRate or LawRate, nil for neither, and rateTop
+	// its highest point.
+	rate    *Curve
+	rateTop float64
 	// norm holds the mean fraction against sqrt(s); nil where not needed.
 	norm *Curve
 }
@@ -56,11 +58,6 @@ func newPlan(c *Channel) *plan {
 	p := &plan{channel: c, branching: branching(c.Products), bound: c.Bound}
 	if p.bound == 0 {
 		p.bound = 1
-	}
-	if c.Energy.Curve != nil {
-		for _, y := range c.Energy.Curve.Y {
-			p.curveTop = max(p.curveTop, y)
-		}
 	}
 	last := len(c.Products) - 1
 	if c.Angle != nil {

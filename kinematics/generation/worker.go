@@ -122,6 +122,9 @@ func (w *Worker) Event(id int64, truth *event.Truth) {
 	truth.BeamOffsets = append(truth.BeamOffsets, int32(len(truth.BeamEnergyGeV))) //nolint:gosec // a block is far smaller
 	truth.Initial = append(truth.Initial, initial)
 	truth.Offsets = append(truth.Offsets, int32(len(truth.Number))) //nolint:gosec // a block is far smaller
+	if p := g.config.Polarisation; p != (Polarisation{}) {
+		truth.Polarise(p.Linear, p.PlaneRad, p.Circular)
+	}
 	w.count(weight)
 }
 
@@ -220,8 +223,7 @@ func (w *Worker) energy() bool {
 		if !(w.state.m > w.plan.threshold) {
 			continue
 		}
-		if c := w.plan.channel.Energy.Curve; c != nil &&
-			w.stream.Uniform()*w.plan.curveTop >= c.At(w.state.m) {
+		if c := w.plan.rate; c != nil && float64(w.stream.Uniform()*w.plan.rateTop) >= c.At(w.state.m) {
 			continue
 		}
 		return true
@@ -259,8 +261,8 @@ func (w *Worker) weighted() float64 {
 	switch p.channel.Energy.Kind {
 	case PhaseSpaceRate:
 		return weight / w.state.flux()
-	case CurveRate:
-		weight *= p.channel.Energy.Curve.At(w.state.m)
+	case CurveRate, LawRate:
+		weight *= p.rate.At(w.state.m)
 	case ConstantRate, energyKinds:
 	}
 	if p.norm != nil {

@@ -35,6 +35,12 @@ func (f *former) detectorForm(path string, m *kinegatev1.Detector) detector.Conf
 	if d := m.GetVertex(); d != nil {
 		c.Vertex = &detector.Vertex{SigmaXM: d.GetSigmaXM(), SigmaYM: d.GetSigmaYM(), SigmaZM: d.GetSigmaZM()}
 	}
+	if d := m.GetDisplaced(); d != nil {
+		c.Displaced = &detector.Displaced{
+			DistanceMinM: d.GetDistanceMinM(), SigmaXM: d.GetSigmaXM(), SigmaYM: d.GetSigmaYM(), SigmaZM: d.GetSigmaZM(),
+			Efficiency: orOne(d.Efficiency),
+		}
+	}
 	return c
 }
 

@@ -89,7 +89,8 @@ func smallDetector() *kinegatev1.Detector {
 			}},
 		},
 		Tagger: &kinegatev1.Tagger{SigmaGev: 0.005, TimeSigmaNs: 1},
-		Vertex: &kinegatev1.VertexDetector{SigmaXM: 1e-4, SigmaYM: 1e-4, SigmaZM: 1e-3},
+		Vertex:    &kinegatev1.VertexDetector{SigmaXM: 1e-4, SigmaYM: 1e-4, SigmaZM: 1e-3},
+		Displaced: &kinegatev1.DisplacedVertexDetector{DistanceMinM: 0.002, SigmaXM: 5e-4, SigmaYM: 5e-4, SigmaZM: 1e-3, Efficiency: new(0.95)},
 	}
 }
 
@@ -99,7 +100,7 @@ func sample() *kinegatev1.Generation {
 		Channels:    reactions(omegaText, "gamma p -> K+ Lambda, Lambda -> p pi-", "gamma p -> p pi+ pi-"),
 		Target:      &kinegatev1.TargetRegion{LengthM: 0.05, SigmaXM: 1e-3, SigmaYM: 1e-3},
 		Accidentals: &kinegatev1.AccidentalCandidates{RateHz: 1e7, WindowNs: 20},
-		Detector:    smallDetector(),
+		Detector:    smallDetector(), Polarisation: &kinegatev1.BeamPolarisation{LinearDegree: 0.7, PlaneRad: 0.2},
 	}
 }
 
@@ -175,7 +176,14 @@ func eventParts(t testing.TB, b *kinegatev1.GeneratedBlock, block *event.Block, 
 	cut(first, end, 2, truth.GetObjectParticles())
 	first, end = block.Candidates(i)
 	cut(first, end, 8, m.GetBeam().GetEnergyGev(), m.GetBeam().GetSigmaGev(), m.GetBeam().GetTimeNs())
-	cut(i, i+1, 8, m.GetVertex().GetXM(), m.GetVertex().GetYM(), m.GetVertex().GetZM())
+	cut(i, i+1, 8, m.GetVertex().GetXM(), m.GetVertex().GetYM(), m.GetVertex().GetZM(),
+		m.GetPolarisation().GetLinearDegree(), truth.GetPolarisation().GetPlaneRad())
+	groups := m.GetVertexGroup()
+	first, end = block.Objects(i)
+	cut(first, end, 4, groups.GetGroups())
+	first, end = offsets(groups.GetOffsets())
+	cut(first, end, 8, groups.GetXM(), groups.GetYM(), groups.GetZM())
+	cut(first, end, 48, groups.GetCovarianceM2())
 	return parts
 }
 

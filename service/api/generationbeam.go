@@ -99,6 +99,20 @@ func (g *generationForm) fermiGas(path string, r *reaction.Reaction, m *kinegate
 	}
 }
 
+// polarisation converts the polarisation of the first beam.
+func (g *generationForm) polarisation(path string, m *kinegatev1.BeamPolarisation) {
+	if m == nil {
+		return
+	}
+	if len(g.first.Initial) != 2 || !isPhoton(&g.first.Initial[0]) {
+		g.need(path, "given", "absent, as the first initial particle is not gamma")
+		return
+	}
+	g.config.Polarisation = generation.Polarisation{
+		Linear: m.GetLinearDegree(), PlaneRad: m.GetPlaneRad(), Circular: m.GetCircularDegree(),
+	}
+}
+
 // spectrum converts the spectrum of a beam of the particle; the core has it at a path of
 // its own. It is never nil: faults of a missing one are noted.
 func (g *generationForm) spectrum(from, path string, m *kinegatev1.BeamSpectrum, p *particle.Particle) generation.Spectrum {

@@ -78,6 +78,7 @@ func newGenerationForm(m *kinegatev1.Generation, table *particle.Table) *generat
 	}
 	if g.first != nil {
 		g.initialState("initial_state", m.GetInitialState())
+		g.polarisation("polarisation", m.GetPolarisation())
 	}
 	return g
 }
@@ -227,6 +228,9 @@ func (g *generationForm) energyShape(path string, m *kinegatev1.EnergyDependence
 		return generation.EnergyShape{}
 	case *kinegatev1.EnergyDependence_PhaseSpace:
 		return generation.EnergyShape{Kind: generation.PhaseSpaceRate}
+	case *kinegatev1.EnergyDependence_Law:
+		g.move(path+".kind", path+".law")
+		return generation.EnergyShape{Kind: generation.LawRate}
 	case *kinegatev1.EnergyDependence_Table:
 		g.move(path+".curve.x", path+".table.sqrt_s_gev")
 		g.move(path+".curve.y", path+".table.rates")
@@ -234,7 +238,7 @@ func (g *generationForm) energyShape(path string, m *kinegatev1.EnergyDependence
 			Kind: generation.CurveRate, Curve: g.curve(path+".table", kind.Table.GetSqrtSGev(), kind.Table.GetRates()),
 		}
 	}
-	g.need(path, "empty", "constant, phase_space or table")
+	g.need(path, "empty", "constant, phase_space, table or law")
 	return generation.EnergyShape{}
 }
 
@@ -285,6 +289,8 @@ func (g *generationForm) angle(path string, r *reaction.Reaction, m *kinegatev1.
 	case *kinegatev1.ProductionAngle_Law:
 		a.Law = g.law(path+".law", r, &r.Products[number].Particle, polar.Law)
 	}
+	a.Asymmetry = m.GetBeamAsymmetry()
+	g.move(path+".asymmetry", path+".beam_asymmetry")
 	if azimuth := m.GetAzimuth(); azimuth != nil {
 		g.move(path+".phi.x", path+".azimuth.angles_rad")
 		g.move(path+".phi.y", path+".azimuth.densities")

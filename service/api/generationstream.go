@@ -155,8 +155,8 @@ func (g *generationStream) turn(ctx context.Context, size int) (grown int, full 
 // which merged, split and noise clusters are allowed for.
 func (g *generationStream) lastSize() int {
 	const (
-		eventTruth, particleTruth, candidateTruth          = 86, 83, 16
-		eventMeasured, objectMeasured, candidateMeasured   = 96, 101, 24
+		eventTruth, particleTruth, candidateTruth          = 110, 83, 16
+		eventMeasured, objectMeasured, candidateMeasured   = 124, 141, 24
 		frame                                              = 1024
 		noiseClusters, objectsPerParticle, columnAllowance = 2, 2, 8
 	)

@@ -86,6 +86,7 @@ func (w *columnWriter) truth(t *event.Truth) *kinegatev1.TruthColumns {
 		MassGev: w.float64s(t.Mass), Parents: w.int16s(t.Parent), Decayed: w.bools(t.Decayed),
 		Origin: w.positions(&t.Origin), ProperTimeS: w.float64s(t.ProperTimeS),
 		BeamOffsets: w.int32s(t.BeamOffsets), BeamEnergyGev: w.float64s(t.BeamEnergyGeV), BeamTimeNs: w.float64s(t.BeamTimeNS),
+		Polarisation: w.polarisation(t.Polarisation),
 	}
 }
 
@@ -126,12 +127,17 @@ func (w *columnWriter) block(b *event.Block) *kinegatev1.EventBlock {
 	if x := b.Clusters; x != nil {
 		m.ClusterPosition = &kinegatev1.ClusterPositionColumns{XM: w.float64s(x.X), YM: w.float64s(x.Y), ZM: w.float64s(x.Z)}
 	}
-	if x := b.Polarisation; x != nil {
-		m.Polarisation = &kinegatev1.PolarisationColumns{
-			LinearDegree: w.float64s(x.Linear), PlaneRad: w.float64s(x.PlaneRad), CircularDegree: w.float64s(x.Circular),
-		}
-	}
+	m.Polarisation = w.polarisation(b.Polarisation)
 	return m
+}
+
+func (w *columnWriter) polarisation(p *event.Polarisation) *kinegatev1.PolarisationColumns {
+	if p == nil {
+		return nil
+	}
+	return &kinegatev1.PolarisationColumns{
+		LinearDegree: w.float64s(p.Linear), PlaneRad: w.float64s(p.PlaneRad), CircularDegree: w.float64s(p.Circular),
+	}
 }
 
 // covariance encodes an optional column; nil is absent, empty is not.

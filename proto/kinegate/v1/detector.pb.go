@@ -114,7 +114,9 @@ type Detector struct {
 	// Measures the beam candidates.
 	Tagger *Tagger `protobuf:"bytes,7,opt,name=tagger,proto3" json:"tagger,omitempty"`
 	// Measures the interaction point.
-	Vertex        *VertexDetector `protobuf:"bytes,8,opt,name=vertex,proto3" json:"vertex,omitempty"`
+	Vertex *VertexDetector `protobuf:"bytes,8,opt,name=vertex,proto3" json:"vertex,omitempty"`
+	// Finds the points where particles decayed in flight.
+	Displaced     *DisplacedVertexDetector `protobuf:"bytes,9,opt,name=displaced,proto3" json:"displaced,omitempty"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
 }
@@ -201,6 +203,13 @@ func (x *Detector) GetTagger() *Tagger {
 func (x *Detector) GetVertex() *VertexDetector {
 	if x != nil {
 		return x.Vertex
+	}
+	return nil
+}
+
+func (x *Detector) GetDisplaced() *DisplacedVertexDetector {
+	if x != nil {
+		return x.Displaced
 	}
 	return nil
 }
@@ -944,11 +953,97 @@ func (x *VertexDetector) GetSigmaZM() float64 {
 	return 0
 }
 
+// DisplacedVertexDetector finds the point of a decay in flight that at least two
+// measured tracks come from, such as Lambda -> p pi-. The tracks then carry its vertex
+// group, whose position and covariance are measured; all other objects belong to the
+// event's vertex. Groups of an event come in the order in which their first tracks were
+// measured.
+type DisplacedVertexDetector struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// Lowest true distance of the point from the interaction point, at least 0.
+	DistanceMinM float64 `protobuf:"fixed64,1,opt,name=distance_min_m,json=distanceMinM,proto3" json:"distance_min_m,omitempty"`
+	// Standard deviation along x, above 0 and at most 1.
+	SigmaXM float64 `protobuf:"fixed64,2,opt,name=sigma_x_m,json=sigmaXM,proto3" json:"sigma_x_m,omitempty"`
+	// Standard deviation along y, above 0 and at most 1.
+	SigmaYM float64 `protobuf:"fixed64,3,opt,name=sigma_y_m,json=sigmaYM,proto3" json:"sigma_y_m,omitempty"`
+	// Standard deviation along z, above 0 and at most 1.
+	SigmaZM float64 `protobuf:"fixed64,4,opt,name=sigma_z_m,json=sigmaZM,proto3" json:"sigma_z_m,omitempty"`
+	// Probability to find such a point. Absent means 1.
+	Efficiency    *float64 `protobuf:"fixed64,5,opt,name=efficiency,proto3,oneof" json:"efficiency,omitempty"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
+}
+
+func (x *DisplacedVertexDetector) Reset() {
+	*x = DisplacedVertexDetector{}
+	mi := &file_kinegate_v1_detector_proto_msgTypes[10]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *DisplacedVertexDetector) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*DisplacedVertexDetector) ProtoMessage() {}
+
+func (x *DisplacedVertexDetector) ProtoReflect() protoreflect.Message {
+	mi := &file_kinegate_v1_detector_proto_msgTypes[10]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use DisplacedVertexDetector.ProtoReflect.Descriptor instead.
+func (*DisplacedVertexDetector) Descriptor() ([]byte, []int) {
+	return file_kinegate_v1_detector_proto_rawDescGZIP(), []int{10}
+}
+
+func (x *DisplacedVertexDetector) GetDistanceMinM() float64 {
+	if x != nil {
+		return x.DistanceMinM
+	}
+	return 0
+}
+
+func (x *DisplacedVertexDetector) GetSigmaXM() float64 {
+	if x != nil {
+		return x.SigmaXM
+	}
+	return 0
+}
+
+func (x *DisplacedVertexDetector) GetSigmaYM() float64 {
+	if x != nil {
+		return x.SigmaYM
+	}
+	return 0
+}
+
+func (x *DisplacedVertexDetector) GetSigmaZM() float64 {
+	if x != nil {
+		return x.SigmaZM
+	}
+	return 0
+}
+
+func (x *DisplacedVertexDetector) GetEfficiency() float64 {
+	if x != nil && x.Efficiency != nil {
+		return *x.Efficiency
+	}
+	return 0
+}
+
 var File_kinegate_v1_detector_proto protoreflect.FileDescriptor
 
 const file_kinegate_v1_detector_proto_rawDesc = "" +
 	"\n" +
-	"\x1akinegate/v1/detector.proto\x12\vkinegate.v1\"\x82\x03\n" +
+	"\x1akinegate/v1/detector.proto\x12\vkinegate.v1\"\xc6\x03\n" +
 	"\bDetector\x12\x12\n" +
 	"\x04name\x18\x01 \x01(\tR\x04name\x12 \n" +
 	"\vdescription\x18\x02 \x01(\tR\vdescription\x12:\n" +
@@ -957,7 +1052,8 @@ const file_kinegate_v1_detector_proto_rawDesc = "" +
 	"\x06recoil\x18\x05 \x01(\v2\x1e.kinegate.v1.DirectionDetectorR\x06recoil\x12:\n" +
 	"\bneutrals\x18\x06 \x01(\v2\x1e.kinegate.v1.DirectionDetectorR\bneutrals\x12+\n" +
 	"\x06tagger\x18\a \x01(\v2\x13.kinegate.v1.TaggerR\x06tagger\x123\n" +
-	"\x06vertex\x18\b \x01(\v2\x1b.kinegate.v1.VertexDetectorR\x06vertex\">\n" +
+	"\x06vertex\x18\b \x01(\v2\x1b.kinegate.v1.VertexDetectorR\x06vertex\x12B\n" +
+	"\tdisplaced\x18\t \x01(\v2$.kinegate.v1.DisplacedVertexDetectorR\tdisplaced\">\n" +
 	"\n" +
 	"PolarRange\x12\x17\n" +
 	"\amin_rad\x18\x01 \x01(\x01R\x06minRad\x12\x17\n" +
@@ -1027,7 +1123,16 @@ const file_kinegate_v1_detector_proto_rawDesc = "" +
 	"\x0eVertexDetector\x12\x1a\n" +
 	"\tsigma_x_m\x18\x01 \x01(\x01R\asigmaXM\x12\x1a\n" +
 	"\tsigma_y_m\x18\x02 \x01(\x01R\asigmaYM\x12\x1a\n" +
-	"\tsigma_z_m\x18\x03 \x01(\x01R\asigmaZM*\x98\x01\n" +
+	"\tsigma_z_m\x18\x03 \x01(\x01R\asigmaZM\"\xc7\x01\n" +
+	"\x17DisplacedVertexDetector\x12$\n" +
+	"\x0edistance_min_m\x18\x01 \x01(\x01R\fdistanceMinM\x12\x1a\n" +
+	"\tsigma_x_m\x18\x02 \x01(\x01R\asigmaXM\x12\x1a\n" +
+	"\tsigma_y_m\x18\x03 \x01(\x01R\asigmaYM\x12\x1a\n" +
+	"\tsigma_z_m\x18\x04 \x01(\x01R\asigmaZM\x12#\n" +
+	"\n" +
+	"efficiency\x18\x05 \x01(\x01H\x00R\n" +
+	"efficiency\x88\x01\x01B\r\n" +
+	"\v_efficiency*\x98\x01\n" +
 	"\aSpecies\x12\x17\n" +
 	"\x13SPECIES_UNSPECIFIED\x10\x00\x12\x14\n" +
 	"\x10SPECIES_ELECTRON\x10\x01\x12\x10\n" +
@@ -1050,19 +1155,20 @@ func file_kinegate_v1_detector_proto_rawDescGZIP() []byte {
 }
 
 var file_kinegate_v1_detector_proto_enumTypes = make([]protoimpl.EnumInfo, 1)
-var file_kinegate_v1_detector_proto_msgTypes = make([]protoimpl.MessageInfo, 10)
+var file_kinegate_v1_detector_proto_msgTypes = make([]protoimpl.MessageInfo, 11)
 var file_kinegate_v1_detector_proto_goTypes = []any{
-	(Species)(0),              // 0: kinegate.v1.Species
-	(*Detector)(nil),          // 1: kinegate.v1.Detector
-	(*PolarRange)(nil),        // 2: kinegate.v1.PolarRange
-	(*Calorimeter)(nil),       // 3: kinegate.v1.Calorimeter
-	(*SplitOff)(nil),          // 4: kinegate.v1.SplitOff
-	(*ClusterNoise)(nil),      // 5: kinegate.v1.ClusterNoise
-	(*Tracker)(nil),           // 6: kinegate.v1.Tracker
-	(*SpeciesConfusion)(nil),  // 7: kinegate.v1.SpeciesConfusion
-	(*DirectionDetector)(nil), // 8: kinegate.v1.DirectionDetector
-	(*Tagger)(nil),            // 9: kinegate.v1.Tagger
-	(*VertexDetector)(nil),    // 10: kinegate.v1.VertexDetector
+	(Species)(0),                    // 0: kinegate.v1.Species
+	(*Detector)(nil),                // 1: kinegate.v1.Detector
+	(*PolarRange)(nil),              // 2: kinegate.v1.PolarRange
+	(*Calorimeter)(nil),             // 3: kinegate.v1.Calorimeter
+	(*SplitOff)(nil),                // 4: kinegate.v1.SplitOff
+	(*ClusterNoise)(nil),            // 5: kinegate.v1.ClusterNoise
+	(*Tracker)(nil),                 // 6: kinegate.v1.Tracker
+	(*SpeciesConfusion)(nil),        // 7: kinegate.v1.SpeciesConfusion
+	(*DirectionDetector)(nil),       // 8: kinegate.v1.DirectionDetector
+	(*Tagger)(nil),                  // 9: kinegate.v1.Tagger
+	(*VertexDetector)(nil),          // 10: kinegate.v1.VertexDetector
+	(*DisplacedVertexDetector)(nil), // 11: kinegate.v1.DisplacedVertexDetector
 }
 var file_kinegate_v1_detector_proto_depIdxs = []int32{
 	3,  // 0: kinegate.v1.Detector.calorimeter:type_name -> kinegate.v1.Calorimeter
@@ -1071,19 +1177,20 @@ var file_kinegate_v1_detector_proto_depIdxs = []int32{
 	8,  // 3: kinegate.v1.Detector.neutrals:type_name -> kinegate.v1.DirectionDetector
 	9,  // 4: kinegate.v1.Detector.tagger:type_name -> kinegate.v1.Tagger
 	10, // 5: kinegate.v1.Detector.vertex:type_name -> kinegate.v1.VertexDetector
-	2,  // 6: kinegate.v1.Calorimeter.theta:type_name -> kinegate.v1.PolarRange
-	4,  // 7: kinegate.v1.Calorimeter.split_off:type_name -> kinegate.v1.SplitOff
-	5,  // 8: kinegate.v1.Calorimeter.noise:type_name -> kinegate.v1.ClusterNoise
-	2,  // 9: kinegate.v1.Tracker.theta:type_name -> kinegate.v1.PolarRange
-	7,  // 10: kinegate.v1.Tracker.confusions:type_name -> kinegate.v1.SpeciesConfusion
-	0,  // 11: kinegate.v1.SpeciesConfusion.from:type_name -> kinegate.v1.Species
-	0,  // 12: kinegate.v1.SpeciesConfusion.to:type_name -> kinegate.v1.Species
-	2,  // 13: kinegate.v1.DirectionDetector.theta:type_name -> kinegate.v1.PolarRange
-	14, // [14:14] is the sub-list for method output_type
-	14, // [14:14] is the sub-list for method input_type
-	14, // [14:14] is the sub-list for extension type_name
-	14, // [14:14] is the sub-list for extension extendee
-	0,  // [0:14] is the sub-list for field type_name
+	11, // 6: kinegate.v1.Detector.displaced:type_name -> kinegate.v1.DisplacedVertexDetector
+	2,  // 7: kinegate.v1.Calorimeter.theta:type_name -> kinegate.v1.PolarRange
+	4,  // 8: kinegate.v1.Calorimeter.split_off:type_name -> kinegate.v1.SplitOff
+	5,  // 9: kinegate.v1.Calorimeter.noise:type_name -> kinegate.v1.ClusterNoise
+	2,  // 10: kinegate.v1.Tracker.theta:type_name -> kinegate.v1.PolarRange
+	7,  // 11: kinegate.v1.Tracker.confusions:type_name -> kinegate.v1.SpeciesConfusion
+	0,  // 12: kinegate.v1.SpeciesConfusion.from:type_name -> kinegate.v1.Species
+	0,  // 13: kinegate.v1.SpeciesConfusion.to:type_name -> kinegate.v1.Species
+	2,  // 14: kinegate.v1.DirectionDetector.theta:type_name -> kinegate.v1.PolarRange
+	15, // [15:15] is the sub-list for method output_type
+	15, // [15:15] is the sub-list for method input_type
+	15, // [15:15] is the sub-list for extension type_name
+	15, // [15:15] is the sub-list for extension extendee
+	0,  // [0:15] is the sub-list for field type_name
 }
 
 func init() { file_kinegate_v1_detector_proto_init() }
@@ -1094,13 +1201,14 @@ func file_kinegate_v1_detector_proto_init() {
 	file_kinegate_v1_detector_proto_msgTypes[2].OneofWrappers = []any{}
 	file_kinegate_v1_detector_proto_msgTypes[5].OneofWrappers = []any{}
 	file_kinegate_v1_detector_proto_msgTypes[7].OneofWrappers = []any{}
+	file_kinegate_v1_detector_proto_msgTypes[10].OneofWrappers = []any{}
 	type x struct{}
 	out := protoimpl.TypeBuilder{
 		File: protoimpl.DescBuilder{
 			GoPackagePath: reflect.TypeOf(x{}).PkgPath(),
 			RawDescriptor: unsafe.Slice(unsafe.StringData(file_kinegate_v1_detector_proto_rawDesc), len(file_kinegate_v1_detector_proto_rawDesc)),
 			NumEnums:      1,
-			NumMessages:   10,
+			NumMessages:   11,
 			NumExtensions: 0,
 			NumServices:   0,
 		},

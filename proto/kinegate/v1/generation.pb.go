@@ -106,7 +106,10 @@ type Generation struct {
 	// Tagged beam particles that did not interact; absent means none.
 	Accidentals *AccidentalCandidates `protobuf:"bytes,8,opt,name=accidentals,proto3" json:"accidentals,omitempty"`
 	// What measures the events; absent means that there is only the truth.
-	Detector      *Detector `protobuf:"bytes,9,opt,name=detector,proto3" json:"detector,omitempty"`
+	Detector *Detector `protobuf:"bytes,9,opt,name=detector,proto3" json:"detector,omitempty"`
+	// Polarisation of the beam photons, of the first beam where there are two; absent
+	// means unpolarised. Events carry it, measured ones too.
+	Polarisation  *BeamPolarisation `protobuf:"bytes,10,opt,name=polarisation,proto3" json:"polarisation,omitempty"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
 }
@@ -204,6 +207,79 @@ func (x *Generation) GetDetector() *Detector {
 	return nil
 }
 
+func (x *Generation) GetPolarisation() *BeamPolarisation {
+	if x != nil {
+		return x.Polarisation
+	}
+	return nil
+}
+
+// BeamPolarisation is a polarisation of beam photons, the same for every event. The two
+// degrees in quadrature are at most 1.
+type BeamPolarisation struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// Degree of linear polarisation, within [0, 1].
+	LinearDegree float64 `protobuf:"fixed64,1,opt,name=linear_degree,json=linearDegree,proto3" json:"linear_degree,omitempty"`
+	// Azimuth of its plane from the x axis, within [-pi, pi].
+	PlaneRad float64 `protobuf:"fixed64,2,opt,name=plane_rad,json=planeRad,proto3" json:"plane_rad,omitempty"`
+	// Degree of circular polarisation, within [-1, 1]; positive helicity is positive. It
+	// shapes no distribution.
+	CircularDegree float64 `protobuf:"fixed64,3,opt,name=circular_degree,json=circularDegree,proto3" json:"circular_degree,omitempty"`
+	unknownFields  protoimpl.UnknownFields
+	sizeCache      protoimpl.SizeCache
+}
+
+func (x *BeamPolarisation) Reset() {
+	*x = BeamPolarisation{}
+	mi := &file_kinegate_v1_generation_proto_msgTypes[1]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *BeamPolarisation) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*BeamPolarisation) ProtoMessage() {}
+
+func (x *BeamPolarisation) ProtoReflect() protoreflect.Message {
+	mi := &file_kinegate_v1_generation_proto_msgTypes[1]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use BeamPolarisation.ProtoReflect.Descriptor instead.
+func (*BeamPolarisation) Descriptor() ([]byte, []int) {
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{1}
+}
+
+func (x *BeamPolarisation) GetLinearDegree() float64 {
+	if x != nil {
+		return x.LinearDegree
+	}
+	return 0
+}
+
+func (x *BeamPolarisation) GetPlaneRad() float64 {
+	if x != nil {
+		return x.PlaneRad
+	}
+	return 0
+}
+
+func (x *BeamPolarisation) GetCircularDegree() float64 {
+	if x != nil {
+		return x.CircularDegree
+	}
+	return 0
+}
+
 // GenerationChannel is one reaction of the mixture.
 type GenerationChannel struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
@@ -237,7 +313,7 @@ type GenerationChannel struct {
 
 func (x *GenerationChannel) Reset() {
 	*x = GenerationChannel{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[1]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[2]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -249,7 +325,7 @@ func (x *GenerationChannel) String() string {
 func (*GenerationChannel) ProtoMessage() {}
 
 func (x *GenerationChannel) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[1]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[2]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -262,7 +338,7 @@ func (x *GenerationChannel) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use GenerationChannel.ProtoReflect.Descriptor instead.
 func (*GenerationChannel) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{1}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{2}
 }
 
 func (x *GenerationChannel) GetName() string {
@@ -338,6 +414,7 @@ type EnergyDependence struct {
 	//	*EnergyDependence_Constant
 	//	*EnergyDependence_PhaseSpace
 	//	*EnergyDependence_Table
+	//	*EnergyDependence_Law
 	Kind          isEnergyDependence_Kind `protobuf_oneof:"kind"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
@@ -345,7 +422,7 @@ type EnergyDependence struct {
 
 func (x *EnergyDependence) Reset() {
 	*x = EnergyDependence{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[2]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[3]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -357,7 +434,7 @@ func (x *EnergyDependence) String() string {
 func (*EnergyDependence) ProtoMessage() {}
 
 func (x *EnergyDependence) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[2]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[3]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -370,7 +447,7 @@ func (x *EnergyDependence) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use EnergyDependence.ProtoReflect.Descriptor instead.
 func (*EnergyDependence) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{2}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{3}
 }
 
 func (x *EnergyDependence) GetKind() isEnergyDependence_Kind {
@@ -407,6 +484,15 @@ func (x *EnergyDependence) GetTable() *EnergyTable {
 	return nil
 }
 
+func (x *EnergyDependence) GetLaw() *LawRate {
+	if x != nil {
+		if x, ok := x.Kind.(*EnergyDependence_Law); ok {
+			return x.Law
+		}
+	}
+	return nil
+}
+
 type isEnergyDependence_Kind interface {
 	isEnergyDependence_Kind()
 }
@@ -426,11 +512,57 @@ type EnergyDependence_Table struct {
 	Table *EnergyTable `protobuf:"bytes,3,opt,name=table,proto3,oneof"`
 }
 
+type EnergyDependence_Law struct {
+	// The total cross-section of the law that the channel's angle names.
+	Law *LawRate `protobuf:"bytes,4,opt,name=law,proto3,oneof"`
+}
+
 func (*EnergyDependence_Constant) isEnergyDependence_Kind() {}
 
 func (*EnergyDependence_PhaseSpace) isEnergyDependence_Kind() {}
 
 func (*EnergyDependence_Table) isEnergyDependence_Kind() {}
+
+func (*EnergyDependence_Law) isEnergyDependence_Kind() {}
+
+// LawRate is the lowest-order total cross-section of quantum electrodynamics that goes
+// with the law of the channel's angle: pair creation, annihilation or Compton
+// scattering, unpolarised. Only for two initial particles.
+type LawRate struct {
+	state         protoimpl.MessageState `protogen:"open.v1"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
+}
+
+func (x *LawRate) Reset() {
+	*x = LawRate{}
+	mi := &file_kinegate_v1_generation_proto_msgTypes[4]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *LawRate) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*LawRate) ProtoMessage() {}
+
+func (x *LawRate) ProtoReflect() protoreflect.Message {
+	mi := &file_kinegate_v1_generation_proto_msgTypes[4]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use LawRate.ProtoReflect.Descriptor instead.
+func (*LawRate) Descriptor() ([]byte, []int) {
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{4}
+}
 
 // ConstantRate is the same rate at every energy at which the channel is open with
 // nominal masses, or, if it never is, with the lightest ones.
@@ -442,7 +574,7 @@ type ConstantRate struct {
 
 func (x *ConstantRate) Reset() {
 	*x = ConstantRate{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[3]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[5]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -454,7 +586,7 @@ func (x *ConstantRate) String() string {
 func (*ConstantRate) ProtoMessage() {}
 
 func (x *ConstantRate) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[3]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[5]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -467,7 +599,7 @@ func (x *ConstantRate) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use ConstantRate.ProtoReflect.Descriptor instead.
 func (*ConstantRate) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{3}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{5}
 }
 
 // PhaseSpaceRate is the volume of phase space, resonances included, over the flux
@@ -480,7 +612,7 @@ type PhaseSpaceRate struct {
 
 func (x *PhaseSpaceRate) Reset() {
 	*x = PhaseSpaceRate{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[4]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[6]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -492,7 +624,7 @@ func (x *PhaseSpaceRate) String() string {
 func (*PhaseSpaceRate) ProtoMessage() {}
 
 func (x *PhaseSpaceRate) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[4]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[6]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -505,7 +637,7 @@ func (x *PhaseSpaceRate) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use PhaseSpaceRate.ProtoReflect.Descriptor instead.
 func (*PhaseSpaceRate) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{4}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{6}
 }
 
 // EnergyTable is a rate by points with straight lines between them, 0 outside.
@@ -521,7 +653,7 @@ type EnergyTable struct {
 
 func (x *EnergyTable) Reset() {
 	*x = EnergyTable{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[5]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[7]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -533,7 +665,7 @@ func (x *EnergyTable) String() string {
 func (*EnergyTable) ProtoMessage() {}
 
 func (x *EnergyTable) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[5]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[7]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -546,7 +678,7 @@ func (x *EnergyTable) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use EnergyTable.ProtoReflect.Descriptor instead.
 func (*EnergyTable) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{5}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{7}
 }
 
 func (x *EnergyTable) GetSqrtSGev() []float64 {
@@ -578,14 +710,17 @@ type ProductionAngle struct {
 	//	*ProductionAngle_Law
 	Polar isProductionAngle_Polar `protobuf_oneof:"polar"`
 	// Density of the azimuth from the x axis; absent means uniform.
-	Azimuth       *AzimuthTable `protobuf:"bytes,5,opt,name=azimuth,proto3" json:"azimuth,omitempty"`
+	Azimuth *AzimuthTable `protobuf:"bytes,5,opt,name=azimuth,proto3" json:"azimuth,omitempty"`
+	// S, within [-1, 1], of the azimuth's density 1 - P S cos(2 (phi - phi_plane)), with
+	// the degree P and the plane of the beam's linear polarisation; 0 with azimuth.
+	BeamAsymmetry float64 `protobuf:"fixed64,6,opt,name=beam_asymmetry,json=beamAsymmetry,proto3" json:"beam_asymmetry,omitempty"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
 }
 
 func (x *ProductionAngle) Reset() {
 	*x = ProductionAngle{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[6]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[8]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -597,7 +732,7 @@ func (x *ProductionAngle) String() string {
 func (*ProductionAngle) ProtoMessage() {}
 
 func (x *ProductionAngle) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[6]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[8]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -610,7 +745,7 @@ func (x *ProductionAngle) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use ProductionAngle.ProtoReflect.Descriptor instead.
 func (*ProductionAngle) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{6}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{8}
 }
 
 func (x *ProductionAngle) GetProduct() string {
@@ -661,6 +796,13 @@ func (x *ProductionAngle) GetAzimuth() *AzimuthTable {
 	return nil
 }
 
+func (x *ProductionAngle) GetBeamAsymmetry() float64 {
+	if x != nil {
+		return x.BeamAsymmetry
+	}
+	return 0
+}
+
 type isProductionAngle_Polar interface {
 	isProductionAngle_Polar()
 }
@@ -700,7 +842,7 @@ type CosineTable struct {
 
 func (x *CosineTable) Reset() {
 	*x = CosineTable{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[7]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[9]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -712,7 +854,7 @@ func (x *CosineTable) String() string {
 func (*CosineTable) ProtoMessage() {}
 
 func (x *CosineTable) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[7]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[9]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -725,7 +867,7 @@ func (x *CosineTable) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use CosineTable.ProtoReflect.Descriptor instead.
 func (*CosineTable) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{7}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{9}
 }
 
 func (x *CosineTable) GetCosines() []float64 {
@@ -755,7 +897,7 @@ type AzimuthTable struct {
 
 func (x *AzimuthTable) Reset() {
 	*x = AzimuthTable{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[8]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[10]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -767,7 +909,7 @@ func (x *AzimuthTable) String() string {
 func (*AzimuthTable) ProtoMessage() {}
 
 func (x *AzimuthTable) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[8]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[10]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -780,7 +922,7 @@ func (x *AzimuthTable) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use AzimuthTable.ProtoReflect.Descriptor instead.
 func (*AzimuthTable) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{8}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{10}
 }
 
 func (x *AzimuthTable) GetAnglesRad() []float64 {
@@ -828,7 +970,7 @@ type DecayOptions struct {
 
 func (x *DecayOptions) Reset() {
 	*x = DecayOptions{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[9]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[11]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -840,7 +982,7 @@ func (x *DecayOptions) String() string {
 func (*DecayOptions) ProtoMessage() {}
 
 func (x *DecayOptions) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[9]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[11]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -853,7 +995,7 @@ func (x *DecayOptions) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use DecayOptions.ProtoReflect.Descriptor instead.
 func (*DecayOptions) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{9}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{11}
 }
 
 func (x *DecayOptions) GetProduct() string {
@@ -981,7 +1123,7 @@ type LineShape struct {
 
 func (x *LineShape) Reset() {
 	*x = LineShape{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[10]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[12]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -993,7 +1135,7 @@ func (x *LineShape) String() string {
 func (*LineShape) ProtoMessage() {}
 
 func (x *LineShape) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[10]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[12]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -1006,7 +1148,7 @@ func (x *LineShape) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use LineShape.ProtoReflect.Descriptor instead.
 func (*LineShape) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{10}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{12}
 }
 
 func (x *LineShape) GetAngularMomentum() int32 {
@@ -1057,7 +1199,7 @@ type DalitzPolynomial struct {
 
 func (x *DalitzPolynomial) Reset() {
 	*x = DalitzPolynomial{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[11]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[13]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -1069,7 +1211,7 @@ func (x *DalitzPolynomial) String() string {
 func (*DalitzPolynomial) ProtoMessage() {}
 
 func (x *DalitzPolynomial) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[11]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[13]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -1082,7 +1224,7 @@ func (x *DalitzPolynomial) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use DalitzPolynomial.ProtoReflect.Descriptor instead.
 func (*DalitzPolynomial) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{11}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{13}
 }
 
 func (x *DalitzPolynomial) GetTerms() []*DalitzTerm {
@@ -1107,7 +1249,7 @@ type DalitzTerm struct {
 
 func (x *DalitzTerm) Reset() {
 	*x = DalitzTerm{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[12]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[14]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -1119,7 +1261,7 @@ func (x *DalitzTerm) String() string {
 func (*DalitzTerm) ProtoMessage() {}
 
 func (x *DalitzTerm) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[12]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[14]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -1132,7 +1274,7 @@ func (x *DalitzTerm) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use DalitzTerm.ProtoReflect.Descriptor instead.
 func (*DalitzTerm) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{12}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{14}
 }
 
 func (x *DalitzTerm) GetCoefficient() float64 {
@@ -1166,7 +1308,7 @@ type VectorToThree struct {
 
 func (x *VectorToThree) Reset() {
 	*x = VectorToThree{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[13]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[15]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -1178,7 +1320,7 @@ func (x *VectorToThree) String() string {
 func (*VectorToThree) ProtoMessage() {}
 
 func (x *VectorToThree) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[13]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[15]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -1191,7 +1333,7 @@ func (x *VectorToThree) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use VectorToThree.ProtoReflect.Descriptor instead.
 func (*VectorToThree) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{13}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{15}
 }
 
 // LeptonDecay is (P.p_a)(p_l.p_b), with the neutrino a of the light lepton l and the
@@ -1204,7 +1346,7 @@ type LeptonDecay struct {
 
 func (x *LeptonDecay) Reset() {
 	*x = LeptonDecay{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[14]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[16]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -1216,7 +1358,7 @@ func (x *LeptonDecay) String() string {
 func (*LeptonDecay) ProtoMessage() {}
 
 func (x *LeptonDecay) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[14]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[16]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -1229,7 +1371,7 @@ func (x *LeptonDecay) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use LeptonDecay.ProtoReflect.Descriptor instead.
 func (*LeptonDecay) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{14}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{16}
 }
 
 // BetaDecay is E_e E_nu, a constant matrix element.
@@ -1241,7 +1383,7 @@ type BetaDecay struct {
 
 func (x *BetaDecay) Reset() {
 	*x = BetaDecay{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[15]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[17]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -1253,7 +1395,7 @@ func (x *BetaDecay) String() string {
 func (*BetaDecay) ProtoMessage() {}
 
 func (x *BetaDecay) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[15]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[17]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -1266,7 +1408,7 @@ func (x *BetaDecay) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use BetaDecay.ProtoReflect.Descriptor instead.
 func (*BetaDecay) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{15}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{17}
 }
 
 // GenerateEventsRequest asks for a slice of a sample.
@@ -1288,7 +1430,7 @@ type GenerateEventsRequest struct {
 
 func (x *GenerateEventsRequest) Reset() {
 	*x = GenerateEventsRequest{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[16]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[18]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -1300,7 +1442,7 @@ func (x *GenerateEventsRequest) String() string {
 func (*GenerateEventsRequest) ProtoMessage() {}
 
 func (x *GenerateEventsRequest) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[16]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[18]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -1313,7 +1455,7 @@ func (x *GenerateEventsRequest) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use GenerateEventsRequest.ProtoReflect.Descriptor instead.
 func (*GenerateEventsRequest) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{16}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{18}
 }
 
 func (x *GenerateEventsRequest) GetGeneration() *Generation {
@@ -1369,7 +1511,7 @@ type GenerateEventsResponse struct {
 
 func (x *GenerateEventsResponse) Reset() {
 	*x = GenerateEventsResponse{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[17]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[19]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -1381,7 +1523,7 @@ func (x *GenerateEventsResponse) String() string {
 func (*GenerateEventsResponse) ProtoMessage() {}
 
 func (x *GenerateEventsResponse) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[17]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[19]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -1394,7 +1536,7 @@ func (x *GenerateEventsResponse) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use GenerateEventsResponse.ProtoReflect.Descriptor instead.
 func (*GenerateEventsResponse) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{17}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{19}
 }
 
 func (x *GenerateEventsResponse) GetFrame() isGenerateEventsResponse_Frame {
@@ -1502,7 +1644,7 @@ type GenerationHeader struct {
 
 func (x *GenerationHeader) Reset() {
 	*x = GenerationHeader{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[18]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[20]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -1514,7 +1656,7 @@ func (x *GenerationHeader) String() string {
 func (*GenerationHeader) ProtoMessage() {}
 
 func (x *GenerationHeader) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[18]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[20]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -1527,7 +1669,7 @@ func (x *GenerationHeader) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use GenerationHeader.ProtoReflect.Descriptor instead.
 func (*GenerationHeader) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{18}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{20}
 }
 
 func (x *GenerationHeader) GetRequestDigest() string {
@@ -1622,7 +1764,7 @@ type GenerationOutline struct {
 
 func (x *GenerationOutline) Reset() {
 	*x = GenerationOutline{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[19]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[21]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -1634,7 +1776,7 @@ func (x *GenerationOutline) String() string {
 func (*GenerationOutline) ProtoMessage() {}
 
 func (x *GenerationOutline) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[19]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[21]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -1647,7 +1789,7 @@ func (x *GenerationOutline) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use GenerationOutline.ProtoReflect.Descriptor instead.
 func (*GenerationOutline) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{19}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{21}
 }
 
 func (x *GenerationOutline) GetName() string {
@@ -1702,7 +1844,7 @@ type GeneratedBlock struct {
 
 func (x *GeneratedBlock) Reset() {
 	*x = GeneratedBlock{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[20]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[22]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -1714,7 +1856,7 @@ func (x *GeneratedBlock) String() string {
 func (*GeneratedBlock) ProtoMessage() {}
 
 func (x *GeneratedBlock) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[20]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[22]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -1727,7 +1869,7 @@ func (x *GeneratedBlock) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use GeneratedBlock.ProtoReflect.Descriptor instead.
 func (*GeneratedBlock) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{20}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{22}
 }
 
 func (x *GeneratedBlock) GetFirstEvent() int64 {
@@ -1769,7 +1911,7 @@ type GenerationProgress struct {
 
 func (x *GenerationProgress) Reset() {
 	*x = GenerationProgress{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[21]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[23]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -1781,7 +1923,7 @@ func (x *GenerationProgress) String() string {
 func (*GenerationProgress) ProtoMessage() {}
 
 func (x *GenerationProgress) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[21]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[23]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -1794,7 +1936,7 @@ func (x *GenerationProgress) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use GenerationProgress.ProtoReflect.Descriptor instead.
 func (*GenerationProgress) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{21}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{23}
 }
 
 func (x *GenerationProgress) GetEventCount() int64 {
@@ -1835,7 +1977,7 @@ type GenerationSummary struct {
 
 func (x *GenerationSummary) Reset() {
 	*x = GenerationSummary{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[22]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[24]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -1847,7 +1989,7 @@ func (x *GenerationSummary) String() string {
 func (*GenerationSummary) ProtoMessage() {}
 
 func (x *GenerationSummary) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[22]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[24]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -1860,7 +2002,7 @@ func (x *GenerationSummary) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use GenerationSummary.ProtoReflect.Descriptor instead.
 func (*GenerationSummary) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{22}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{24}
 }
 
 func (x *GenerationSummary) GetEventCount() int64 {
@@ -1955,7 +2097,7 @@ type MeasureBoundRequest struct {
 
 func (x *MeasureBoundRequest) Reset() {
 	*x = MeasureBoundRequest{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[23]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[25]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -1967,7 +2109,7 @@ func (x *MeasureBoundRequest) String() string {
 func (*MeasureBoundRequest) ProtoMessage() {}
 
 func (x *MeasureBoundRequest) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[23]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[25]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -1980,7 +2122,7 @@ func (x *MeasureBoundRequest) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use MeasureBoundRequest.ProtoReflect.Descriptor instead.
 func (*MeasureBoundRequest) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{23}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{25}
 }
 
 func (x *MeasureBoundRequest) GetGeneration() *Generation {
@@ -2019,7 +2161,7 @@ type MeasureBoundResponse struct {
 
 func (x *MeasureBoundResponse) Reset() {
 	*x = MeasureBoundResponse{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[24]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[26]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2031,7 +2173,7 @@ func (x *MeasureBoundResponse) String() string {
 func (*MeasureBoundResponse) ProtoMessage() {}
 
 func (x *MeasureBoundResponse) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[24]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[26]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -2044,7 +2186,7 @@ func (x *MeasureBoundResponse) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use MeasureBoundResponse.ProtoReflect.Descriptor instead.
 func (*MeasureBoundResponse) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{24}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{26}
 }
 
 func (x *MeasureBoundResponse) GetDrawCount() int64 {
@@ -2084,7 +2226,7 @@ type CheckGenerationRequest struct {
 
 func (x *CheckGenerationRequest) Reset() {
 	*x = CheckGenerationRequest{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[25]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[27]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2096,7 +2238,7 @@ func (x *CheckGenerationRequest) String() string {
 func (*CheckGenerationRequest) ProtoMessage() {}
 
 func (x *CheckGenerationRequest) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[25]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[27]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -2109,7 +2251,7 @@ func (x *CheckGenerationRequest) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use CheckGenerationRequest.ProtoReflect.Descriptor instead.
 func (*CheckGenerationRequest) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{25}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{27}
 }
 
 func (x *CheckGenerationRequest) GetForm() isCheckGenerationRequest_Form {
@@ -2173,7 +2315,7 @@ type CheckGenerationResponse struct {
 
 func (x *CheckGenerationResponse) Reset() {
 	*x = CheckGenerationResponse{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[26]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[28]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2185,7 +2327,7 @@ func (x *CheckGenerationResponse) String() string {
 func (*CheckGenerationResponse) ProtoMessage() {}
 
 func (x *CheckGenerationResponse) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[26]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[28]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -2198,7 +2340,7 @@ func (x *CheckGenerationResponse) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use CheckGenerationResponse.ProtoReflect.Descriptor instead.
 func (*CheckGenerationResponse) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{26}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{28}
 }
 
 func (x *CheckGenerationResponse) GetFaults() []*FieldFault {
@@ -2245,7 +2387,7 @@ type CheckDetectorRequest struct {
 
 func (x *CheckDetectorRequest) Reset() {
 	*x = CheckDetectorRequest{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[27]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[29]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2257,7 +2399,7 @@ func (x *CheckDetectorRequest) String() string {
 func (*CheckDetectorRequest) ProtoMessage() {}
 
 func (x *CheckDetectorRequest) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[27]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[29]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -2270,7 +2412,7 @@ func (x *CheckDetectorRequest) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use CheckDetectorRequest.ProtoReflect.Descriptor instead.
 func (*CheckDetectorRequest) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{27}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{29}
 }
 
 func (x *CheckDetectorRequest) GetForm() isCheckDetectorRequest_Form {
@@ -2329,7 +2471,7 @@ type CheckDetectorResponse struct {
 
 func (x *CheckDetectorResponse) Reset() {
 	*x = CheckDetectorResponse{}
-	mi := &file_kinegate_v1_generation_proto_msgTypes[28]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[30]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2341,7 +2483,7 @@ func (x *CheckDetectorResponse) String() string {
 func (*CheckDetectorResponse) ProtoMessage() {}
 
 func (x *CheckDetectorResponse) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_generation_proto_msgTypes[28]
+	mi := &file_kinegate_v1_generation_proto_msgTypes[30]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -2354,7 +2496,7 @@ func (x *CheckDetectorResponse) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use CheckDetectorResponse.ProtoReflect.Descriptor instead.
 func (*CheckDetectorResponse) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{28}
+	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{30}
 }
 
 func (x *CheckDetectorResponse) GetFaults() []*FieldFault {
@@ -2375,7 +2517,7 @@ var File_kinegate_v1_generation_proto protoreflect.FileDescriptor
 
 const file_kinegate_v1_generation_proto_rawDesc = "" +
 	"\n" +
-	"\x1ckinegate/v1/generation.proto\x12\vkinegate.v1\x1a\x16kinegate/v1/beam.proto\x1a\x1akinegate/v1/detector.proto\x1a\x17kinegate/v1/event.proto\x1a\x17kinegate/v1/fault.proto\x1a\x1ckinegate/v1/kinematics.proto\x1a\x17kinegate/v1/truth.proto\"\xa3\x03\n" +
+	"\x1ckinegate/v1/generation.proto\x12\vkinegate.v1\x1a\x16kinegate/v1/beam.proto\x1a\x1akinegate/v1/detector.proto\x1a\x17kinegate/v1/event.proto\x1a\x17kinegate/v1/fault.proto\x1a\x1ckinegate/v1/kinematics.proto\x1a\x17kinegate/v1/truth.proto\"\xe6\x03\n" +
 	"\n" +
 	"Generation\x12\x12\n" +
 	"\x04name\x18\x01 \x01(\tR\x04name\x12 \n" +
@@ -2386,7 +2528,13 @@ const file_kinegate_v1_generation_proto_rawDesc = "" +
 	"\bweighted\x18\x06 \x01(\bR\bweighted\x121\n" +
 	"\x06target\x18\a \x01(\v2\x19.kinegate.v1.TargetRegionR\x06target\x12C\n" +
 	"\vaccidentals\x18\b \x01(\v2!.kinegate.v1.AccidentalCandidatesR\vaccidentals\x121\n" +
-	"\bdetector\x18\t \x01(\v2\x15.kinegate.v1.DetectorR\bdetector\"\xa4\x03\n" +
+	"\bdetector\x18\t \x01(\v2\x15.kinegate.v1.DetectorR\bdetector\x12A\n" +
+	"\fpolarisation\x18\n" +
+	" \x01(\v2\x1d.kinegate.v1.BeamPolarisationR\fpolarisation\"}\n" +
+	"\x10BeamPolarisation\x12#\n" +
+	"\rlinear_degree\x18\x01 \x01(\x01R\flinearDegree\x12\x1b\n" +
+	"\tplane_rad\x18\x02 \x01(\x01R\bplaneRad\x12'\n" +
+	"\x0fcircular_degree\x18\x03 \x01(\x01R\x0ecircularDegree\"\xa4\x03\n" +
 	"\x11GenerationChannel\x12\x12\n" +
 	"\x04name\x18\x01 \x01(\tR\x04name\x12\x1a\n" +
 	"\breaction\x18\x02 \x01(\tR\breaction\x12F\n" +
@@ -2398,25 +2546,28 @@ const file_kinegate_v1_generation_proto_rawDesc = "" +
 	"\x06decays\x18\b \x03(\v2\x19.kinegate.v1.DecayOptionsR\x06decays\x12&\n" +
 	"\x0fsharp_below_gev\x18\t \x01(\x01R\rsharpBelowGevB\v\n" +
 	"\t_fractionB\b\n" +
-	"\x06_bound\"\xc5\x01\n" +
+	"\x06_bound\"\xef\x01\n" +
 	"\x10EnergyDependence\x127\n" +
 	"\bconstant\x18\x01 \x01(\v2\x19.kinegate.v1.ConstantRateH\x00R\bconstant\x12>\n" +
 	"\vphase_space\x18\x02 \x01(\v2\x1b.kinegate.v1.PhaseSpaceRateH\x00R\n" +
 	"phaseSpace\x120\n" +
-	"\x05table\x18\x03 \x01(\v2\x18.kinegate.v1.EnergyTableH\x00R\x05tableB\x06\n" +
-	"\x04kind\"\x0e\n" +
+	"\x05table\x18\x03 \x01(\v2\x18.kinegate.v1.EnergyTableH\x00R\x05table\x12(\n" +
+	"\x03law\x18\x04 \x01(\v2\x14.kinegate.v1.LawRateH\x00R\x03lawB\x06\n" +
+	"\x04kind\"\t\n" +
+	"\aLawRate\"\x0e\n" +
 	"\fConstantRate\"\x10\n" +
 	"\x0ePhaseSpaceRate\"A\n" +
 	"\vEnergyTable\x12\x1c\n" +
 	"\n" +
 	"sqrt_s_gev\x18\x01 \x03(\x01R\bsqrtSGev\x12\x14\n" +
-	"\x05rates\x18\x02 \x03(\x01R\x05rates\"\xf2\x01\n" +
+	"\x05rates\x18\x02 \x03(\x01R\x05rates\"\x99\x02\n" +
 	"\x0fProductionAngle\x12\x18\n" +
 	"\aproduct\x18\x01 \x01(\tR\aproduct\x122\n" +
 	"\x06cosine\x18\x02 \x01(\v2\x18.kinegate.v1.CosineTableH\x00R\x06cosine\x12&\n" +
 	"\x0eslope_per_gev2\x18\x03 \x01(\x01H\x00R\fslopePerGev2\x12+\n" +
 	"\x03law\x18\x04 \x01(\x0e2\x17.kinegate.v1.AngularLawH\x00R\x03law\x123\n" +
-	"\aazimuth\x18\x05 \x01(\v2\x19.kinegate.v1.AzimuthTableR\aazimuthB\a\n" +
+	"\aazimuth\x18\x05 \x01(\v2\x19.kinegate.v1.AzimuthTableR\aazimuth\x12%\n" +
+	"\x0ebeam_asymmetry\x18\x06 \x01(\x01R\rbeamAsymmetryB\a\n" +
 	"\x05polar\"E\n" +
 	"\vCosineTable\x12\x18\n" +
 	"\acosines\x18\x01 \x03(\x01R\acosines\x12\x1c\n" +
@@ -2576,99 +2727,103 @@ func file_kinegate_v1_generation_proto_rawDescGZIP() []byte {
 }
 
 var file_kinegate_v1_generation_proto_enumTypes = make([]protoimpl.EnumInfo, 1)
-var file_kinegate_v1_generation_proto_msgTypes = make([]protoimpl.MessageInfo, 29)
+var file_kinegate_v1_generation_proto_msgTypes = make([]protoimpl.MessageInfo, 31)
 var file_kinegate_v1_generation_proto_goTypes = []any{
 	(AngularLaw)(0),                 // 0: kinegate.v1.AngularLaw
 	(*Generation)(nil),              // 1: kinegate.v1.Generation
-	(*GenerationChannel)(nil),       // 2: kinegate.v1.GenerationChannel
-	(*EnergyDependence)(nil),        // 3: kinegate.v1.EnergyDependence
-	(*ConstantRate)(nil),            // 4: kinegate.v1.ConstantRate
-	(*PhaseSpaceRate)(nil),          // 5: kinegate.v1.PhaseSpaceRate
-	(*EnergyTable)(nil),             // 6: kinegate.v1.EnergyTable
-	(*ProductionAngle)(nil),         // 7: kinegate.v1.ProductionAngle
-	(*CosineTable)(nil),             // 8: kinegate.v1.CosineTable
-	(*AzimuthTable)(nil),            // 9: kinegate.v1.AzimuthTable
-	(*DecayOptions)(nil),            // 10: kinegate.v1.DecayOptions
-	(*LineShape)(nil),               // 11: kinegate.v1.LineShape
-	(*DalitzPolynomial)(nil),        // 12: kinegate.v1.DalitzPolynomial
-	(*DalitzTerm)(nil),              // 13: kinegate.v1.DalitzTerm
-	(*VectorToThree)(nil),           // 14: kinegate.v1.VectorToThree
-	(*LeptonDecay)(nil),             // 15: kinegate.v1.LeptonDecay
-	(*BetaDecay)(nil),               // 16: kinegate.v1.BetaDecay
-	(*GenerateEventsRequest)(nil),   // 17: kinegate.v1.GenerateEventsRequest
-	(*GenerateEventsResponse)(nil),  // 18: kinegate.v1.GenerateEventsResponse
-	(*GenerationHeader)(nil),        // 19: kinegate.v1.GenerationHeader
-	(*GenerationOutline)(nil),       // 20: kinegate.v1.GenerationOutline
-	(*GeneratedBlock)(nil),          // 21: kinegate.v1.GeneratedBlock
-	(*GenerationProgress)(nil),      // 22: kinegate.v1.GenerationProgress
-	(*GenerationSummary)(nil),       // 23: kinegate.v1.GenerationSummary
-	(*MeasureBoundRequest)(nil),     // 24: kinegate.v1.MeasureBoundRequest
-	(*MeasureBoundResponse)(nil),    // 25: kinegate.v1.MeasureBoundResponse
-	(*CheckGenerationRequest)(nil),  // 26: kinegate.v1.CheckGenerationRequest
-	(*CheckGenerationResponse)(nil), // 27: kinegate.v1.CheckGenerationResponse
-	(*CheckDetectorRequest)(nil),    // 28: kinegate.v1.CheckDetectorRequest
-	(*CheckDetectorResponse)(nil),   // 29: kinegate.v1.CheckDetectorResponse
-	(*GenerationInitialState)(nil),  // 30: kinegate.v1.GenerationInitialState
-	(*TargetRegion)(nil),            // 31: kinegate.v1.TargetRegion
-	(*AccidentalCandidates)(nil),    // 32: kinegate.v1.AccidentalCandidates
-	(*Detector)(nil),                // 33: kinegate.v1.Detector
-	(*Reaction)(nil),                // 34: kinegate.v1.Reaction
-	(*EventBlock)(nil),              // 35: kinegate.v1.EventBlock
-	(*TruthColumns)(nil),            // 36: kinegate.v1.TruthColumns
-	(*FieldFault)(nil),              // 37: kinegate.v1.FieldFault
+	(*BeamPolarisation)(nil),        // 2: kinegate.v1.BeamPolarisation
+	(*GenerationChannel)(nil),       // 3: kinegate.v1.GenerationChannel
+	(*EnergyDependence)(nil),        // 4: kinegate.v1.EnergyDependence
+	(*LawRate)(nil),                 // 5: kinegate.v1.LawRate
+	(*ConstantRate)(nil),            // 6: kinegate.v1.ConstantRate
+	(*PhaseSpaceRate)(nil),          // 7: kinegate.v1.PhaseSpaceRate
+	(*EnergyTable)(nil),             // 8: kinegate.v1.EnergyTable
+	(*ProductionAngle)(nil),         // 9: kinegate.v1.ProductionAngle
+	(*CosineTable)(nil),             // 10: kinegate.v1.CosineTable
+	(*AzimuthTable)(nil),            // 11: kinegate.v1.AzimuthTable
+	(*DecayOptions)(nil),            // 12: kinegate.v1.DecayOptions
+	(*LineShape)(nil),               // 13: kinegate.v1.LineShape
+	(*DalitzPolynomial)(nil),        // 14: kinegate.v1.DalitzPolynomial
+	(*DalitzTerm)(nil),              // 15: kinegate.v1.DalitzTerm
+	(*VectorToThree)(nil),           // 16: kinegate.v1.VectorToThree
+	(*LeptonDecay)(nil),             // 17: kinegate.v1.LeptonDecay
+	(*BetaDecay)(nil),               // 18: kinegate.v1.BetaDecay
+	(*GenerateEventsRequest)(nil),   // 19: kinegate.v1.GenerateEventsRequest
+	(*GenerateEventsResponse)(nil),  // 20: kinegate.v1.GenerateEventsResponse
+	(*GenerationHeader)(nil),        // 21: kinegate.v1.GenerationHeader
+	(*GenerationOutline)(nil),       // 22: kinegate.v1.GenerationOutline
+	(*GeneratedBlock)(nil),          // 23: kinegate.v1.GeneratedBlock
+	(*GenerationProgress)(nil),      // 24: kinegate.v1.GenerationProgress
+	(*GenerationSummary)(nil),       // 25: kinegate.v1.GenerationSummary
+	(*MeasureBoundRequest)(nil),     // 26: kinegate.v1.MeasureBoundRequest
+	(*MeasureBoundResponse)(nil),    // 27: kinegate.v1.MeasureBoundResponse
+	(*CheckGenerationRequest)(nil),  // 28: kinegate.v1.CheckGenerationRequest
+	(*CheckGenerationResponse)(nil), // 29: kinegate.v1.CheckGenerationResponse
+	(*CheckDetectorRequest)(nil),    // 30: kinegate.v1.CheckDetectorRequest
+	(*CheckDetectorResponse)(nil),   // 31: kinegate.v1.CheckDetectorResponse
+	(*GenerationInitialState)(nil),  // 32: kinegate.v1.GenerationInitialState
+	(*TargetRegion)(nil),            // 33: kinegate.v1.TargetRegion
+	(*AccidentalCandidates)(nil),    // 34: kinegate.v1.AccidentalCandidates
+	(*Detector)(nil),                // 35: kinegate.v1.Detector
+	(*Reaction)(nil),                // 36: kinegate.v1.Reaction
+	(*EventBlock)(nil),              // 37: kinegate.v1.EventBlock
+	(*TruthColumns)(nil),            // 38: kinegate.v1.TruthColumns
+	(*FieldFault)(nil),              // 39: kinegate.v1.FieldFault
 }
 var file_kinegate_v1_generation_proto_depIdxs = []int32{
-	30, // 0: kinegate.v1.Generation.initial_state:type_name -> kinegate.v1.GenerationInitialState
-	2,  // 1: kinegate.v1.Generation.channels:type_name -> kinegate.v1.GenerationChannel
-	31, // 2: kinegate.v1.Generation.target:type_name -> kinegate.v1.TargetRegion
-	32, // 3: kinegate.v1.Generation.accidentals:type_name -> kinegate.v1.AccidentalCandidates
-	33, // 4: kinegate.v1.Generation.detector:type_name -> kinegate.v1.Detector
-	34, // 5: kinegate.v1.GenerationChannel.structured_reaction:type_name -> kinegate.v1.Reaction
-	3,  // 6: kinegate.v1.GenerationChannel.energy:type_name -> kinegate.v1.EnergyDependence
-	7,  // 7: kinegate.v1.GenerationChannel.angle:type_name -> kinegate.v1.ProductionAngle
-	10, // 8: kinegate.v1.GenerationChannel.decays:type_name -> kinegate.v1.DecayOptions
-	4,  // 9: kinegate.v1.EnergyDependence.constant:type_name -> kinegate.v1.ConstantRate
-	5,  // 10: kinegate.v1.EnergyDependence.phase_space:type_name -> kinegate.v1.PhaseSpaceRate
-	6,  // 11: kinegate.v1.EnergyDependence.table:type_name -> kinegate.v1.EnergyTable
-	8,  // 12: kinegate.v1.ProductionAngle.cosine:type_name -> kinegate.v1.CosineTable
-	0,  // 13: kinegate.v1.ProductionAngle.law:type_name -> kinegate.v1.AngularLaw
-	9,  // 14: kinegate.v1.ProductionAngle.azimuth:type_name -> kinegate.v1.AzimuthTable
-	11, // 15: kinegate.v1.DecayOptions.line_shape:type_name -> kinegate.v1.LineShape
-	12, // 16: kinegate.v1.DecayOptions.dalitz_polynomial:type_name -> kinegate.v1.DalitzPolynomial
-	14, // 17: kinegate.v1.DecayOptions.vector_to_three:type_name -> kinegate.v1.VectorToThree
-	15, // 18: kinegate.v1.DecayOptions.lepton_decay:type_name -> kinegate.v1.LeptonDecay
-	16, // 19: kinegate.v1.DecayOptions.beta_decay:type_name -> kinegate.v1.BetaDecay
-	8,  // 20: kinegate.v1.DecayOptions.cosine:type_name -> kinegate.v1.CosineTable
-	13, // 21: kinegate.v1.DalitzPolynomial.terms:type_name -> kinegate.v1.DalitzTerm
-	1,  // 22: kinegate.v1.GenerateEventsRequest.generation:type_name -> kinegate.v1.Generation
-	19, // 23: kinegate.v1.GenerateEventsResponse.header:type_name -> kinegate.v1.GenerationHeader
-	21, // 24: kinegate.v1.GenerateEventsResponse.block:type_name -> kinegate.v1.GeneratedBlock
-	22, // 25: kinegate.v1.GenerateEventsResponse.progress:type_name -> kinegate.v1.GenerationProgress
-	23, // 26: kinegate.v1.GenerateEventsResponse.summary:type_name -> kinegate.v1.GenerationSummary
-	20, // 27: kinegate.v1.GenerationHeader.channels:type_name -> kinegate.v1.GenerationOutline
-	35, // 28: kinegate.v1.GeneratedBlock.events:type_name -> kinegate.v1.EventBlock
-	36, // 29: kinegate.v1.GeneratedBlock.truth:type_name -> kinegate.v1.TruthColumns
-	1,  // 30: kinegate.v1.MeasureBoundRequest.generation:type_name -> kinegate.v1.Generation
-	1,  // 31: kinegate.v1.CheckGenerationRequest.generation:type_name -> kinegate.v1.Generation
-	37, // 32: kinegate.v1.CheckGenerationResponse.faults:type_name -> kinegate.v1.FieldFault
-	1,  // 33: kinegate.v1.CheckGenerationResponse.generation:type_name -> kinegate.v1.Generation
-	20, // 34: kinegate.v1.CheckGenerationResponse.channels:type_name -> kinegate.v1.GenerationOutline
-	33, // 35: kinegate.v1.CheckDetectorRequest.detector:type_name -> kinegate.v1.Detector
-	37, // 36: kinegate.v1.CheckDetectorResponse.faults:type_name -> kinegate.v1.FieldFault
-	33, // 37: kinegate.v1.CheckDetectorResponse.detector:type_name -> kinegate.v1.Detector
-	17, // 38: kinegate.v1.GenerationService.GenerateEvents:input_type -> kinegate.v1.GenerateEventsRequest
-	24, // 39: kinegate.v1.GenerationService.MeasureBound:input_type -> kinegate.v1.MeasureBoundRequest
-	26, // 40: kinegate.v1.GenerationService.CheckGeneration:input_type -> kinegate.v1.CheckGenerationRequest
-	28, // 41: kinegate.v1.GenerationService.CheckDetector:input_type -> kinegate.v1.CheckDetectorRequest
-	18, // 42: kinegate.v1.GenerationService.GenerateEvents:output_type -> kinegate.v1.GenerateEventsResponse
-	25, // 43: kinegate.v1.GenerationService.MeasureBound:output_type -> kinegate.v1.MeasureBoundResponse
-	27, // 44: kinegate.v1.GenerationService.CheckGeneration:output_type -> kinegate.v1.CheckGenerationResponse
-	29, // 45: kinegate.v1.GenerationService.CheckDetector:output_type -> kinegate.v1.CheckDetectorResponse
-	42, // [42:46] is the sub-list for method output_type
-	38, // [38:42] is the sub-list for method input_type
-	38, // [38:38] is the sub-list for extension type_name
-	38, // [38:38] is the sub-list for extension extendee
-	0,  // [0:38] is the sub-list for field type_name
+	32, // 0: kinegate.v1.Generation.initial_state:type_name -> kinegate.v1.GenerationInitialState
+	3,  // 1: kinegate.v1.Generation.channels:type_name -> kinegate.v1.GenerationChannel
+	33, // 2: kinegate.v1.Generation.target:type_name -> kinegate.v1.TargetRegion
+	34, // 3: kinegate.v1.Generation.accidentals:type_name -> kinegate.v1.AccidentalCandidates
+	35, // 4: kinegate.v1.Generation.detector:type_name -> kinegate.v1.Detector
+	2,  // 5: kinegate.v1.Generation.polarisation:type_name -> kinegate.v1.BeamPolarisation
+	36, // 6: kinegate.v1.GenerationChannel.structured_reaction:type_name -> kinegate.v1.Reaction
+	4,  // 7: kinegate.v1.GenerationChannel.energy:type_name -> kinegate.v1.EnergyDependence
+	9,  // 8: kinegate.v1.GenerationChannel.angle:type_name -> kinegate.v1.ProductionAngle
+	12, // 9: kinegate.v1.GenerationChannel.decays:type_name -> kinegate.v1.DecayOptions
+	6,  // 10: kinegate.v1.EnergyDependence.constant:type_name -> kinegate.v1.ConstantRate
+	7,  // 11: kinegate.v1.EnergyDependence.phase_space:type_name -> kinegate.v1.PhaseSpaceRate
+	8,  // 12: kinegate.v1.EnergyDependence.table:type_name -> kinegate.v1.EnergyTable
+	5,  // 13: kinegate.v1.EnergyDependence.law:type_name -> kinegate.v1.LawRate
+	10, // 14: kinegate.v1.ProductionAngle.cosine:type_name -> kinegate.v1.CosineTable
+	0,  // 15: kinegate.v1.ProductionAngle.law:type_name -> kinegate.v1.AngularLaw
+	11, // 16: kinegate.v1.ProductionAngle.azimuth:type_name -> kinegate.v1.AzimuthTable
+	13, // 17: kinegate.v1.DecayOptions.line_shape:type_name -> kinegate.v1.LineShape
+	14, // 18: kinegate.v1.DecayOptions.dalitz_polynomial:type_name -> kinegate.v1.DalitzPolynomial
+	16, // 19: kinegate.v1.DecayOptions.vector_to_three:type_name -> kinegate.v1.VectorToThree
+	17, // 20: kinegate.v1.DecayOptions.lepton_decay:type_name -> kinegate.v1.LeptonDecay
+	18, // 21: kinegate.v1.DecayOptions.beta_decay:type_name -> kinegate.v1.BetaDecay
+	10, // 22: kinegate.v1.DecayOptions.cosine:type_name -> kinegate.v1.CosineTable
+	15, // 23: kinegate.v1.DalitzPolynomial.terms:type_name -> kinegate.v1.DalitzTerm
+	1,  // 24: kinegate.v1.GenerateEventsRequest.generation:type_name -> kinegate.v1.Generation
+	21, // 25: kinegate.v1.GenerateEventsResponse.header:type_name -> kinegate.v1.GenerationHeader
+	23, // 26: kinegate.v1.GenerateEventsResponse.block:type_name -> kinegate.v1.GeneratedBlock
+	24, // 27: kinegate.v1.GenerateEventsResponse.progress:type_name -> kinegate.v1.GenerationProgress
+	25, // 28: kinegate.v1.GenerateEventsResponse.summary:type_name -> kinegate.v1.GenerationSummary
+	22, // 29: kinegate.v1.GenerationHeader.channels:type_name -> kinegate.v1.GenerationOutline
+	37, // 30: kinegate.v1.GeneratedBlock.events:type_name -> kinegate.v1.EventBlock
+	38, // 31: kinegate.v1.GeneratedBlock.truth:type_name -> kinegate.v1.TruthColumns
+	1,  // 32: kinegate.v1.MeasureBoundRequest.generation:type_name -> kinegate.v1.Generation
+	1,  // 33: kinegate.v1.CheckGenerationRequest.generation:type_name -> kinegate.v1.Generation
+	39, // 34: kinegate.v1.CheckGenerationResponse.faults:type_name -> kinegate.v1.FieldFault
+	1,  // 35: kinegate.v1.CheckGenerationResponse.generation:type_name -> kinegate.v1.Generation
+	22, // 36: kinegate.v1.CheckGenerationResponse.channels:type_name -> kinegate.v1.GenerationOutline
+	35, // 37: kinegate.v1.CheckDetectorRequest.detector:type_name -> kinegate.v1.Detector
+	39, // 38: kinegate.v1.CheckDetectorResponse.faults:type_name -> kinegate.v1.FieldFault
+	35, // 39: kinegate.v1.CheckDetectorResponse.detector:type_name -> kinegate.v1.Detector
+	19, // 40: kinegate.v1.GenerationService.GenerateEvents:input_type -> kinegate.v1.GenerateEventsRequest
+	26, // 41: kinegate.v1.GenerationService.MeasureBound:input_type -> kinegate.v1.MeasureBoundRequest
+	28, // 42: kinegate.v1.GenerationService.CheckGeneration:input_type -> kinegate.v1.CheckGenerationRequest
+	30, // 43: kinegate.v1.GenerationService.CheckDetector:input_type -> kinegate.v1.CheckDetectorRequest
+	20, // 44: kinegate.v1.GenerationService.GenerateEvents:output_type -> kinegate.v1.GenerateEventsResponse
+	27, // 45: kinegate.v1.GenerationService.MeasureBound:output_type -> kinegate.v1.MeasureBoundResponse
+	29, // 46: kinegate.v1.GenerationService.CheckGeneration:output_type -> kinegate.v1.CheckGenerationResponse
+	31, // 47: kinegate.v1.GenerationService.CheckDetector:output_type -> kinegate.v1.CheckDetectorResponse
+	44, // [44:48] is the sub-list for method output_type
+	40, // [40:44] is the sub-list for method input_type
+	40, // [40:40] is the sub-list for extension type_name
+	40, // [40:40] is the sub-list for extension extendee
+	0,  // [0:40] is the sub-list for field type_name
 }
 
 func init() { file_kinegate_v1_generation_proto_init() }
@@ -2682,35 +2837,36 @@ func file_kinegate_v1_generation_proto_init() {
 	file_kinegate_v1_fault_proto_init()
 	file_kinegate_v1_kinematics_proto_init()
 	file_kinegate_v1_truth_proto_init()
-	file_kinegate_v1_generation_proto_msgTypes[1].OneofWrappers = []any{}
-	file_kinegate_v1_generation_proto_msgTypes[2].OneofWrappers = []any{
+	file_kinegate_v1_generation_proto_msgTypes[2].OneofWrappers = []any{}
+	file_kinegate_v1_generation_proto_msgTypes[3].OneofWrappers = []any{
 		(*EnergyDependence_Constant)(nil),
 		(*EnergyDependence_PhaseSpace)(nil),
 		(*EnergyDependence_Table)(nil),
+		(*EnergyDependence_Law)(nil),
 	}
-	file_kinegate_v1_generation_proto_msgTypes[6].OneofWrappers = []any{
+	file_kinegate_v1_generation_proto_msgTypes[8].OneofWrappers = []any{
 		(*ProductionAngle_Cosine)(nil),
 		(*ProductionAngle_SlopePerGev2)(nil),
 		(*ProductionAngle_Law)(nil),
 	}
-	file_kinegate_v1_generation_proto_msgTypes[9].OneofWrappers = []any{
+	file_kinegate_v1_generation_proto_msgTypes[11].OneofWrappers = []any{
 		(*DecayOptions_DalitzPolynomial)(nil),
 		(*DecayOptions_VectorToThree)(nil),
 		(*DecayOptions_LeptonDecay)(nil),
 		(*DecayOptions_BetaDecay)(nil),
 	}
-	file_kinegate_v1_generation_proto_msgTypes[10].OneofWrappers = []any{}
-	file_kinegate_v1_generation_proto_msgTypes[17].OneofWrappers = []any{
+	file_kinegate_v1_generation_proto_msgTypes[12].OneofWrappers = []any{}
+	file_kinegate_v1_generation_proto_msgTypes[19].OneofWrappers = []any{
 		(*GenerateEventsResponse_Header)(nil),
 		(*GenerateEventsResponse_Block)(nil),
 		(*GenerateEventsResponse_Progress)(nil),
 		(*GenerateEventsResponse_Summary)(nil),
 	}
-	file_kinegate_v1_generation_proto_msgTypes[25].OneofWrappers = []any{
+	file_kinegate_v1_generation_proto_msgTypes[27].OneofWrappers = []any{
 		(*CheckGenerationRequest_Generation)(nil),
 		(*CheckGenerationRequest_Yaml)(nil),
 	}
-	file_kinegate_v1_generation_proto_msgTypes[27].OneofWrappers = []any{
+	file_kinegate_v1_generation_proto_msgTypes[29].OneofWrappers = []any{
 		(*CheckDetectorRequest_Detector)(nil),
 		(*CheckDetectorRequest_Yaml)(nil),
 	}
@@ -2720,7 +2876,7 @@ func file_kinegate_v1_generation_proto_init() {
 			GoPackagePath: reflect.TypeOf(x{}).PkgPath(),
 			RawDescriptor: unsafe.Slice(unsafe.StringData(file_kinegate_v1_generation_proto_rawDesc), len(file_kinegate_v1_generation_proto_rawDesc)),
 			NumEnums:      1,
-			NumMessages:   29,
+			NumMessages:   31,
 			NumExtensions: 0,
 			NumServices:   1,
 		},

@@ -70,8 +70,10 @@ type TruthColumns struct {
 	// it, of a merged cluster the one with most energy, -1 for noise. Empty without a
 	// detector.
 	ObjectParticles []byte `protobuf:"bytes,17,opt,name=object_particles,json=objectParticles,proto3" json:"object_particles,omitempty"`
-	unknownFields   protoimpl.UnknownFields
-	sizeCache       protoimpl.SizeCache
+	// Polarisation of the beam photon of each event; absent means unpolarised.
+	Polarisation  *PolarisationColumns `protobuf:"bytes,18,opt,name=polarisation,proto3" json:"polarisation,omitempty"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
 }
 
 func (x *TruthColumns) Reset() {
@@ -223,6 +225,13 @@ func (x *TruthColumns) GetObjectParticles() []byte {
 	return nil
 }
 
+func (x *TruthColumns) GetPolarisation() *PolarisationColumns {
+	if x != nil {
+		return x.Polarisation
+	}
+	return nil
+}
+
 // PositionColumns is points in the laboratory.
 type PositionColumns struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
@@ -291,7 +300,7 @@ var File_kinegate_v1_truth_proto protoreflect.FileDescriptor
 
 const file_kinegate_v1_truth_proto_rawDesc = "" +
 	"\n" +
-	"\x17kinegate/v1/truth.proto\x12\vkinegate.v1\x1a\x17kinegate/v1/event.proto\"\xb7\x05\n" +
+	"\x17kinegate/v1/truth.proto\x12\vkinegate.v1\x1a\x17kinegate/v1/event.proto\"\xfd\x05\n" +
 	"\fTruthColumns\x12\x1b\n" +
 	"\tevent_ids\x18\x01 \x01(\fR\beventIds\x12\x1a\n" +
 	"\bchannels\x18\x02 \x01(\fR\bchannels\x12\x18\n" +
@@ -311,7 +320,8 @@ const file_kinegate_v1_truth_proto_rawDesc = "" +
 	"\x0fbeam_energy_gev\x18\x0f \x01(\fR\rbeamEnergyGev\x12 \n" +
 	"\fbeam_time_ns\x18\x10 \x01(\fR\n" +
 	"beamTimeNs\x12)\n" +
-	"\x10object_particles\x18\x11 \x01(\fR\x0fobjectParticles\"D\n" +
+	"\x10object_particles\x18\x11 \x01(\fR\x0fobjectParticles\x12D\n" +
+	"\fpolarisation\x18\x12 \x01(\v2 .kinegate.v1.PolarisationColumnsR\fpolarisation\"D\n" +
 	"\x0fPositionColumns\x12\x0f\n" +
 	"\x03x_m\x18\x01 \x01(\fR\x02xM\x12\x0f\n" +
 	"\x03y_m\x18\x02 \x01(\fR\x02yM\x12\x0f\n" +
@@ -334,17 +344,19 @@ var file_kinegate_v1_truth_proto_goTypes = []any{
 	(*TruthColumns)(nil),          // 0: kinegate.v1.TruthColumns
 	(*PositionColumns)(nil),       // 1: kinegate.v1.PositionColumns
 	(*EnergyMomentumColumns)(nil), // 2: kinegate.v1.EnergyMomentumColumns
+	(*PolarisationColumns)(nil),   // 3: kinegate.v1.PolarisationColumns
 }
 var file_kinegate_v1_truth_proto_depIdxs = []int32{
 	2, // 0: kinegate.v1.TruthColumns.initial_state:type_name -> kinegate.v1.EnergyMomentumColumns
 	1, // 1: kinegate.v1.TruthColumns.vertex:type_name -> kinegate.v1.PositionColumns
 	2, // 2: kinegate.v1.TruthColumns.momentum:type_name -> kinegate.v1.EnergyMomentumColumns
 	1, // 3: kinegate.v1.TruthColumns.origin:type_name -> kinegate.v1.PositionColumns
-	4, // [4:4] is the sub-list for method output_type
-	4, // [4:4] is the sub-list for method input_type
-	4, // [4:4] is the sub-list for extension type_name
-	4, // [4:4] is the sub-list for extension extendee
-	0, // [0:4] is the sub-list for field type_name
+	3, // 4: kinegate.v1.TruthColumns.polarisation:type_name -> kinegate.v1.PolarisationColumns
+	5, // [5:5] is the sub-list for method output_type
+	5, // [5:5] is the sub-list for method input_type
+	5, // [5:5] is the sub-list for extension type_name
+	5, // [5:5] is the sub-list for extension extendee
+	0, // [0:5] is the sub-list for field type_name
 }
 
 func init() { file_kinegate_v1_truth_proto_init() }

@@ -24,7 +24,7 @@ _sym_db = _symbol_database.Default()
 
 
 
-DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n\x1akinegate/v1/detector.proto\x12\x0bkinegate.v1\"\xb7\x02\n\x08\x44\x65tector\x12\x0c\n\x04name\x18\x01 \x01(\t\x12\x13\n\x0b\x64\x65scription\x18\x02 \x01(\t\x12-\n\x0b\x63\x61lorimeter\x18\x03 \x01(\x0b\x32\x18.kinegate.v1.Calorimeter\x12%\n\x07tracker\x18\x04 \x01(\x0b\x32\x14.kinegate.v1.Tracker\x12.\n\x06recoil\x18\x05 \x01(\x0b\x32\x1e.kinegate.v1.DirectionDetector\x12\x30\n\x08neutrals\x18\x06 \x01(\x0b\x32\x1e.kinegate.v1.DirectionDetector\x12#\n\x06tagger\x18\x07 \x01(\x0b\x32\x13.kinegate.v1.Tagger\x12+\n\x06vertex\x18\x08 \x01(\x0b\x32\x1b.kinegate.v1.VertexDetector\".\n\nPolarRange\x12\x0f\n\x07min_rad\x18\x01 \x01(\x01\x12\x0f\n\x07max_rad\x18\x02 \x01(\x01\"\x85\x03\n\x0b\x43\x61lorimeter\x12&\n\x05theta\x18\x01 \x01(\x0b\x32\x17.kinegate.v1.PolarRange\x12\x10\n\x08radius_m\x18\x02 \x01(\x01\x12\x13\n\x0b\x66rom_centre\x18\x03 \x01(\x08\x12\x12\n\nspread_z_m\x18\x04 \x01(\x01\x12\x12\n\nstochastic\x18\x05 \x01(\x01\x12\x10\n\x08\x63onstant\x18\x06 \x01(\x01\x12\x11\n\tnoise_gev\x18\x07 \x01(\x01\x12\x17\n\x0ftheta_sigma_rad\x18\x08 \x01(\x01\x12\x15\n\rphi_sigma_rad\x18\t \x01(\x01\x12\x15\n\rthreshold_gev\x18\n \x01(\x01\x12\x17\n\nefficiency\x18\x0b \x01(\x01H\x00\x88\x01\x01\x12\x17\n\x0fmerge_angle_rad\x18\x0c \x01(\x01\x12(\n\tsplit_off\x18\r \x01(\x0b\x32\x15.kinegate.v1.SplitOff\x12(\n\x05noise\x18\x0e \x01(\x0b\x32\x19.kinegate.v1.ClusterNoiseB\r\n\x0b_efficiency\"s\n\x08SplitOff\x12\x13\n\x0bprobability\x18\x01 \x01(\x01\x12\x11\n\tmin_share\x18\x02 \x01(\x01\x12\x11\n\tmax_share\x18\x03 \x01(\x01\x12\x15\n\rmin_angle_rad\x18\x04 \x01(\x01\x12\x15\n\rmax_angle_rad\x18\x05 \x01(\x01\"5\n\x0c\x43lusterNoise\x12\x13\n\x0bprobability\x18\x01 \x01(\x01\x12\x10\n\x08mean_gev\x18\x02 \x01(\x01\"\xf4\x01\n\x07Tracker\x12&\n\x05theta\x18\x01 \x01(\x0b\x32\x17.kinegate.v1.PolarRange\x12\x18\n\x10momentum_min_gev\x18\x02 \x01(\x01\x12\x10\n\x08\x63onstant\x18\x03 \x01(\x01\x12\x0f\n\x07per_gev\x18\x04 \x01(\x01\x12\x17\n\x0f\x61ngle_sigma_rad\x18\x05 \x01(\x01\x12\x17\n\nefficiency\x18\x06 \x01(\x01H\x00\x88\x01\x01\x12\x10\n\x08identify\x18\x07 \x01(\x08\x12\x31\n\nconfusions\x18\x08 \x03(\x0b\x32\x1d.kinegate.v1.SpeciesConfusionB\r\n\x0b_efficiency\"m\n\x10SpeciesConfusion\x12\"\n\x04\x66rom\x18\x01 \x01(\x0e\x32\x14.kinegate.v1.Species\x12 \n\x02to\x18\x02 \x01(\x0e\x32\x14.kinegate.v1.Species\x12\x13\n\x0bprobability\x18\x03 \x01(\x01\"\x96\x01\n\x11\x44irectionDetector\x12&\n\x05theta\x18\x01 \x01(\x0b\x32\x17.kinegate.v1.PolarRange\x12\x18\n\x10momentum_min_gev\x18\x02 \x01(\x01\x12\x17\n\x0f\x61ngle_sigma_rad\x18\x03 \x01(\x01\x12\x17\n\nefficiency\x18\x04 \x01(\x01H\x00\x88\x01\x01\x42\r\n\x0b_efficiency\"E\n\x06Tagger\x12\x11\n\tedges_gev\x18\x01 \x03(\x01\x12\x11\n\tsigma_gev\x18\x02 \x01(\x01\x12\x15\n\rtime_sigma_ns\x18\x03 \x01(\x01\"I\n\x0eVertexDetector\x12\x11\n\tsigma_x_m\x18\x01 \x01(\x01\x12\x11\n\tsigma_y_m\x18\x02 \x01(\x01\x12\x11\n\tsigma_z_m\x18\x03 \x01(\x01*\x98\x01\n\x07Species\x12\x17\n\x13SPECIES_UNSPECIFIED\x10\x00\x12\x14\n\x10SPECIES_ELECTRON\x10\x01\x12\x10\n\x0cSPECIES_MUON\x10\x02\x12\x10\n\x0cSPECIES_PION\x10\x03\x12\x10\n\x0cSPECIES_KAON\x10\x04\x12\x12\n\x0eSPECIES_PROTON\x10\x05\x12\x14\n\x10SPECIES_DEUTERON\x10\x06\x42\x33Z1example.org/kinegate/proto/kinegate/v1;kinegatev1b\x06proto3')
+DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n\x1akinegate/v1/detector.proto\x12\x0bkinegate.v1\"\xf0\x02\n\x08\x44\x65tector\x12\x0c\n\x04name\x18\x01 \x01(\t\x12\x13\n\x0b\x64\x65scription\x18\x02 \x01(\t\x12-\n\x0b\x63\x61lorimeter\x18\x03 \x01(\x0b\x32\x18.kinegate.v1.Calorimeter\x12%\n\x07tracker\x18\x04 \x01(\x0b\x32\x14.kinegate.v1.Tracker\x12.\n\x06recoil\x18\x05 \x01(\x0b\x32\x1e.kinegate.v1.DirectionDetector\x12\x30\n\x08neutrals\x18\x06 \x01(\x0b\x32\x1e.kinegate.v1.DirectionDetector\x12#\n\x06tagger\x18\x07 \x01(\x0b\x32\x13.kinegate.v1.Tagger\x12+\n\x06vertex\x18\x08 \x01(\x0b\x32\x1b.kinegate.v1.VertexDetector\x12\x37\n\tdisplaced\x18\t \x01(\x0b\x32$.kinegate.v1.DisplacedVertexDetector\".\n\nPolarRange\x12\x0f\n\x07min_rad\x18\x01 \x01(\x01\x12\x0f\n\x07max_rad\x18\x02 \x01(\x01\"\x85\x03\n\x0b\x43\x61lorimeter\x12&\n\x05theta\x18\x01 \x01(\x0b\x32\x17.kinegate.v1.PolarRange\x12\x10\n\x08radius_m\x18\x02 \x01(\x01\x12\x13\n\x0b\x66rom_centre\x18\x03 \x01(\x08\x12\x12\n\nspread_z_m\x18\x04 \x01(\x01\x12\x12\n\nstochastic\x18\x05 \x01(\x01\x12\x10\n\x08\x63onstant\x18\x06 \x01(\x01\x12\x11\n\tnoise_gev\x18\x07 \x01(\x01\x12\x17\n\x0ftheta_sigma_rad\x18\x08 \x01(\x01\x12\x15\n\rphi_sigma_rad\x18\t \x01(\x01\x12\x15\n\rthreshold_gev\x18\n \x01(\x01\x12\x17\n\nefficiency\x18\x0b \x01(\x01H\x00\x88\x01\x01\x12\x17\n\x0fmerge_angle_rad\x18\x0c \x01(\x01\x12(\n\tsplit_off\x18\r \x01(\x0b\x32\x15.kinegate.v1.SplitOff\x12(\n\x05noise\x18\x0e \x01(\x0b\x32\x19.kinegate.v1.ClusterNoiseB\r\n\x0b_efficiency\"s\n\x08SplitOff\x12\x13\n\x0bprobability\x18\x01 \x01(\x01\x12\x11\n\tmin_share\x18\x02 \x01(\x01\x12\x11\n\tmax_share\x18\x03 \x01(\x01\x12\x15\n\rmin_angle_rad\x18\x04 \x01(\x01\x12\x15\n\rmax_angle_rad\x18\x05 \x01(\x01\"5\n\x0c\x43lusterNoise\x12\x13\n\x0bprobability\x18\x01 \x01(\x01\x12\x10\n\x08mean_gev\x18\x02 \x01(\x01\"\xf4\x01\n\x07Tracker\x12&\n\x05theta\x18\x01 \x01(\x0b\x32\x17.kinegate.v1.PolarRange\x12\x18\n\x10momentum_min_gev\x18\x02 \x01(\x01\x12\x10\n\x08\x63onstant\x18\x03 \x01(\x01\x12\x0f\n\x07per_gev\x18\x04 \x01(\x01\x12\x17\n\x0f\x61ngle_sigma_rad\x18\x05 \x01(\x01\x12\x17\n\nefficiency\x18\x06 \x01(\x01H\x00\x88\x01\x01\x12\x10\n\x08identify\x18\x07 \x01(\x08\x12\x31\n\nconfusions\x18\x08 \x03(\x0b\x32\x1d.kinegate.v1.SpeciesConfusionB\r\n\x0b_efficiency\"m\n\x10SpeciesConfusion\x12\"\n\x04\x66rom\x18\x01 \x01(\x0e\x32\x14.kinegate.v1.Species\x12 \n\x02to\x18\x02 \x01(\x0e\x32\x14.kinegate.v1.Species\x12\x13\n\x0bprobability\x18\x03 \x01(\x01\"\x96\x01\n\x11\x44irectionDetector\x12&\n\x05theta\x18\x01 \x01(\x0b\x32\x17.kinegate.v1.PolarRange\x12\x18\n\x10momentum_min_gev\x18\x02 \x01(\x01\x12\x17\n\x0f\x61ngle_sigma_rad\x18\x03 \x01(\x01\x12\x17\n\nefficiency\x18\x04 \x01(\x01H\x00\x88\x01\x01\x42\r\n\x0b_efficiency\"E\n\x06Tagger\x12\x11\n\tedges_gev\x18\x01 \x03(\x01\x12\x11\n\tsigma_gev\x18\x02 \x01(\x01\x12\x15\n\rtime_sigma_ns\x18\x03 \x01(\x01\"I\n\x0eVertexDetector\x12\x11\n\tsigma_x_m\x18\x01 \x01(\x01\x12\x11\n\tsigma_y_m\x18\x02 \x01(\x01\x12\x11\n\tsigma_z_m\x18\x03 \x01(\x01\"\x92\x01\n\x17\x44isplacedVertexDetector\x12\x16\n\x0e\x64istance_min_m\x18\x01 \x01(\x01\x12\x11\n\tsigma_x_m\x18\x02 \x01(\x01\x12\x11\n\tsigma_y_m\x18\x03 \x01(\x01\x12\x11\n\tsigma_z_m\x18\x04 \x01(\x01\x12\x17\n\nefficiency\x18\x05 \x01(\x01H\x00\x88\x01\x01\x42\r\n\x0b_efficiency*\x98\x01\n\x07Species\x12\x17\n\x13SPECIES_UNSPECIFIED\x10\x00\x12\x14\n\x10SPECIES_ELECTRON\x10\x01\x12\x10\n\x0cSPECIES_MUON\x10\x02\x12\x10\n\x0cSPECIES_PION\x10\x03\x12\x10\n\x0cSPECIES_KAON\x10\x04\x12\x12\n\x0eSPECIES_PROTON\x10\x05\x12\x14\n\x10SPECIES_DEUTERON\x10\x06\x42\x33Z1example.org/kinegate/proto/kinegate/v1;kinegatev1b\x06proto3')
 
 _globals = globals()
 _builder.BuildMessageAndEnumDescriptors(DESCRIPTOR, _globals)
@@ -32,26 +32,28 @@ _builder.BuildTopDescriptorsAndMessages(DESCRIPTOR, 'kinegate.v1.detector_pb2', 
 if not _descriptor._USE_C_DESCRIPTORS:
   _globals['DESCRIPTOR']._loaded_options = None
   _globals['DESCRIPTOR']._serialized_options = b'Z1example.org/kinegate/proto/kinegate/v1;kinegatev1'
-  _globals['_SPECIES']._serialized_start=1627
-  _globals['_SPECIES']._serialized_end=1779
+  _globals['_SPECIES']._serialized_start=1833
+  _globals['_SPECIES']._serialized_end=1985
   _globals['_DETECTOR']._serialized_start=44
-  _globals['_DETECTOR']._serialized_end=355
-  _globals['_POLARRANGE']._serialized_start=357
-  _globals['_POLARRANGE']._serialized_end=403
-  _globals['_CALORIMETER']._serialized_start=406
-  _globals['_CALORIMETER']._serialized_end=795
-  _globals['_SPLITOFF']._serialized_start=797
-  _globals['_SPLITOFF']._serialized_end=912
-  _globals['_CLUSTERNOISE']._serialized_start=914
-  _globals['_CLUSTERNOISE']._serialized_end=967
-  _globals['_TRACKER']._serialized_start=970
-  _globals['_TRACKER']._serialized_end=1214
-  _globals['_SPECIESCONFUSION']._serialized_start=1216
-  _globals['_SPECIESCONFUSION']._serialized_end=1325
-  _globals['_DIRECTIONDETECTOR']._serialized_start=1328
-  _globals['_DIRECTIONDETECTOR']._serialized_end=1478
-  _globals['_TAGGER']._serialized_start=1480
-  _globals['_TAGGER']._serialized_end=1549
-  _globals['_VERTEXDETECTOR']._serialized_start=1551
-  _globals['_VERTEXDETECTOR']._serialized_end=1624
+  _globals['_DETECTOR']._serialized_end=412
+  _globals['_POLARRANGE']._serialized_start=414
+  _globals['_POLARRANGE']._serialized_end=460
+  _globals['_CALORIMETER']._serialized_start=463
+  _globals['_CALORIMETER']._serialized_end=852
+  _globals['_SPLITOFF']._serialized_start=854
+  _globals['_SPLITOFF']._serialized_end=969
+  _globals['_CLUSTERNOISE']._serialized_start=971
+  _globals['_CLUSTERNOISE']._serialized_end=1024
+  _globals['_TRACKER']._serialized_start=1027
+  _globals['_TRACKER']._serialized_end=1271
+  _globals['_SPECIESCONFUSION']._serialized_start=1273
+  _globals['_SPECIESCONFUSION']._serialized_end=1382
+  _globals['_DIRECTIONDETECTOR']._serialized_start=1385
+  _globals['_DIRECTIONDETECTOR']._serialized_end=1535
+  _globals['_TAGGER']._serialized_start=1537
+  _globals['_TAGGER']._serialized_end=1606
+  _globals['_VERTEXDETECTOR']._serialized_start=1608
+  _globals['_VERTEXDETECTOR']._serialized_end=1681
+  _globals['_DISPLACEDVERTEXDETECTOR']._serialized_start=1684
+  _globals['_DISPLACEDVERTEXDETECTOR']._serialized_end=1830
 # @@protoc_insertion_point(module_scope)

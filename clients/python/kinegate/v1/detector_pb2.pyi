@@ -25,7 +25,7 @@ SPECIES_PROTON: Species
 SPECIES_DEUTERON: Species
 
 class Detector(_message.Message):
-    __slots__ = ("name", "description", "calorimeter", "tracker", "recoil", "neutrals", "tagger", "vertex")
+    __slots__ = ("name", "description", "calorimeter", "tracker", "recoil", "neutrals", "tagger", "vertex", "displaced")
     NAME_FIELD_NUMBER: _ClassVar[int]
     DESCRIPTION_FIELD_NUMBER: _ClassVar[int]
     CALORIMETER_FIELD_NUMBER: _ClassVar[int]
@@ -34,6 +34,7 @@ class Detector(_message.Message):
     NEUTRALS_FIELD_NUMBER: _ClassVar[int]
     TAGGER_FIELD_NUMBER: _ClassVar[int]
     VERTEX_FIELD_NUMBER: _ClassVar[int]
+    DISPLACED_FIELD_NUMBER: _ClassVar[int]
     name: str
     description: str
     calorimeter: Calorimeter
@@ -42,7 +43,8 @@ class Detector(_message.Message):
     neutrals: DirectionDetector
     tagger: Tagger
     vertex: VertexDetector
-    def __init__(self, name: _Optional[str] = ..., description: _Optional[str] = ..., calorimeter: _Optional[_Union[Calorimeter, _Mapping]] = ..., tracker: _Optional[_Union[Tracker, _Mapping]] = ..., recoil: _Optional[_Union[DirectionDetector, _Mapping]] = ..., neutrals: _Optional[_Union[DirectionDetector, _Mapping]] = ..., tagger: _Optional[_Union[Tagger, _Mapping]] = ..., vertex: _Optional[_Union[VertexDetector, _Mapping]] = ...) -> None: ...
+    displaced: DisplacedVertexDetector
+    def __init__(self, name: _Optional[str] = ..., description: _Optional[str] = ..., calorimeter: _Optional[_Union[Calorimeter, _Mapping]] = ..., tracker: _Optional[_Union[Tracker, _Mapping]] = ..., recoil: _Optional[_Union[DirectionDetector, _Mapping]] = ..., neutrals: _Optional[_Union[DirectionDetector, _Mapping]] = ..., tagger: _Optional[_Union[Tagger, _Mapping]] = ..., vertex: _Optional[_Union[VertexDetector, _Mapping]] = ..., displaced: _Optional[_Union[DisplacedVertexDetector, _Mapping]] = ...) -> None: ...
 
 class PolarRange(_message.Message):
     __slots__ = ("min_rad", "max_rad")
@@ -166,3 +168,17 @@ class VertexDetector(_message.Message):
     sigma_y_m: float
     sigma_z_m: float
     def __init__(self, sigma_x_m: _Optional[float] = ..., sigma_y_m: _Optional[float] = ..., sigma_z_m: _Optional[float] = ...) -> None: ...
+
+class DisplacedVertexDetector(_message.Message):
+    __slots__ = ("distance_min_m", "sigma_x_m", "sigma_y_m", "sigma_z_m", "efficiency")
+    DISTANCE_MIN_M_FIELD_NUMBER: _ClassVar[int]
+    SIGMA_X_M_FIELD_NUMBER: _ClassVar[int]
+    SIGMA_Y_M_FIELD_NUMBER: _ClassVar[int]
+    SIGMA_Z_M_FIELD_NUMBER: _ClassVar[int]
+    EFFICIENCY_FIELD_NUMBER: _ClassVar[int]
+    distance_min_m: float
+    sigma_x_m: float
+    sigma_y_m: float
+    sigma_z_m: float
+    efficiency: float
+    def __init__(self, distance_min_m: _Optional[float] = ..., sigma_x_m: _Optional[float] = ..., sigma_y_m: _Optional[float] = ..., sigma_z_m: _Optional[float] = ..., efficiency: _Optional[float] = ...) -> None: ...

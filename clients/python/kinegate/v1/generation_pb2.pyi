@@ -25,7 +25,7 @@ ANGULAR_LAW_ANNIHILATION: AngularLaw
 ANGULAR_LAW_COMPTON: AngularLaw
 
 class Generation(_message.Message):
-    __slots__ = ("name", "description", "seed", "initial_state", "channels", "weighted", "target", "accidentals", "detector")
+    __slots__ = ("name", "description", "seed", "initial_state", "channels", "weighted", "target", "accidentals", "detector", "polarisation")
     NAME_FIELD_NUMBER: _ClassVar[int]
     DESCRIPTION_FIELD_NUMBER: _ClassVar[int]
     SEED_FIELD_NUMBER: _ClassVar[int]
@@ -35,6 +35,7 @@ class Generation(_message.Message):
     TARGET_FIELD_NUMBER: _ClassVar[int]
     ACCIDENTALS_FIELD_NUMBER: _ClassVar[int]
     DETECTOR_FIELD_NUMBER: _ClassVar[int]
+    POLARISATION_FIELD_NUMBER: _ClassVar[int]
     name: str
     description: str
     seed: int
@@ -44,7 +45,18 @@ class Generation(_message.Message):
     target: _beam_pb2.TargetRegion
     accidentals: _beam_pb2.AccidentalCandidates
     detector: _detector_pb2.Detector
-    def __init__(self, name: _Optional[str] = ..., description: _Optional[str] = ..., seed: _Optional[int] = ..., initial_state: _Optional[_Union[_beam_pb2.GenerationInitialState, _Mapping]] = ..., channels: _Optional[_Iterable[_Union[GenerationChannel, _Mapping]]] = ..., weighted: bool = ..., target: _Optional[_Union[_beam_pb2.TargetRegion, _Mapping]] = ..., accidentals: _Optional[_Union[_beam_pb2.AccidentalCandidates, _Mapping]] = ..., detector: _Optional[_Union[_detector_pb2.Detector, _Mapping]] = ...) -> None: ...
+    polarisation: BeamPolarisation
+    def __init__(self, name: _Optional[str] = ..., description: _Optional[str] = ..., seed: _Optional[int] = ..., initial_state: _Optional[_Union[_beam_pb2.GenerationInitialState, _Mapping]] = ..., channels: _Optional[_Iterable[_Union[GenerationChannel, _Mapping]]] = ..., weighted: bool = ..., target: _Optional[_Union[_beam_pb2.TargetRegion, _Mapping]] = ..., accidentals: _Optional[_Union[_beam_pb2.AccidentalCandidates, _Mapping]] = ..., detector: _Optional[_Union[_detector_pb2.Detector, _Mapping]] = ..., polarisation: _Optional[_Union[BeamPolarisation, _Mapping]] = ...) -> None: ...
+
+class BeamPolarisation(_message.Message):
+    __slots__ = ("linear_degree", "plane_rad", "circular_degree")
+    LINEAR_DEGREE_FIELD_NUMBER: _ClassVar[int]
+    PLANE_RAD_FIELD_NUMBER: _ClassVar[int]
+    CIRCULAR_DEGREE_FIELD_NUMBER: _ClassVar[int]
+    linear_degree: float
+    plane_rad: float
+    circular_degree: float
+    def __init__(self, linear_degree: _Optional[float] = ..., plane_rad: _Optional[float] = ..., circular_degree: _Optional[float] = ...) -> None: ...
 
 class GenerationChannel(_message.Message):
     __slots__ = ("name", "reaction", "structured_reaction", "fraction", "energy", "angle", "bound", "decays", "sharp_below_gev")
@@ -69,14 +81,20 @@ class GenerationChannel(_message.Message):
     def __init__(self, name: _Optional[str] = ..., reaction: _Optional[str] = ..., structured_reaction: _Optional[_Union[_kinematics_pb2.Reaction, _Mapping]] = ..., fraction: _Optional[float] = ..., energy: _Optional[_Union[EnergyDependence, _Mapping]] = ..., angle: _Optional[_Union[ProductionAngle, _Mapping]] = ..., bound: _Optional[float] = ..., decays: _Optional[_Iterable[_Union[DecayOptions, _Mapping]]] = ..., sharp_below_gev: _Optional[float] = ...) -> None: ...
 
 class EnergyDependence(_message.Message):
-    __slots__ = ("constant", "phase_space", "table")
+    __slots__ = ("constant", "phase_space", "table", "law")
     CONSTANT_FIELD_NUMBER: _ClassVar[int]
     PHASE_SPACE_FIELD_NUMBER: _ClassVar[int]
     TABLE_FIELD_NUMBER: _ClassVar[int]
+    LAW_FIELD_NUMBER: _ClassVar[int]
     constant: ConstantRate
     phase_space: PhaseSpaceRate
     table: EnergyTable
-    def __init__(self, constant: _Optional[_Union[ConstantRate, _Mapping]] = ..., phase_space: _Optional[_Union[PhaseSpaceRate, _Mapping]] = ..., table: _Optional[_Union[EnergyTable, _Mapping]] = ...) -> None: ...
+    law: LawRate
+    def __init__(self, constant: _Optional[_Union[ConstantRate, _Mapping]] = ..., phase_space: _Optional[_Union[PhaseSpaceRate, _Mapping]] = ..., table: _Optional[_Union[EnergyTable, _Mapping]] = ..., law: _Optional[_Union[LawRate, _Mapping]] = ...) -> None: ...
+
+class LawRate(_message.Message):
+    __slots__ = ()
+    def __init__(self) -> None: ...
 
 class ConstantRate(_message.Message):
     __slots__ = ()
@@ -95,18 +113,20 @@ class EnergyTable(_message.Message):
     def __init__(self, sqrt_s_gev: _Optional[_Iterable[float]] = ..., rates: _Optional[_Iterable[float]] = ...) -> None: ...
 
 class ProductionAngle(_message.Message):
-    __slots__ = ("product", "cosine", "slope_per_gev2", "law", "azimuth")
+    __slots__ = ("product", "cosine", "slope_per_gev2", "law", "azimuth", "beam_asymmetry")
     PRODUCT_FIELD_NUMBER: _ClassVar[int]
     COSINE_FIELD_NUMBER: _ClassVar[int]
     SLOPE_PER_GEV2_FIELD_NUMBER: _ClassVar[int]
     LAW_FIELD_NUMBER: _ClassVar[int]
     AZIMUTH_FIELD_NUMBER: _ClassVar[int]
+    BEAM_ASYMMETRY_FIELD_NUMBER: _ClassVar[int]
     product: str
     cosine: CosineTable
     slope_per_gev2: float
     law: AngularLaw
     azimuth: AzimuthTable
-    def __init__(self, product: _Optional[str] = ..., cosine: _Optional[_Union[CosineTable, _Mapping]] = ..., slope_per_gev2: _Optional[float] = ..., law: _Optional[_Union[AngularLaw, str]] = ..., azimuth: _Optional[_Union[AzimuthTable, _Mapping]] = ...) -> None: ...
+    beam_asymmetry: float
+    def __init__(self, product: _Optional[str] = ..., cosine: _Optional[_Union[CosineTable, _Mapping]] = ..., slope_per_gev2: _Optional[float] = ..., law: _Optional[_Union[AngularLaw, str]] = ..., azimuth: _Optional[_Union[AzimuthTable, _Mapping]] = ..., beam_asymmetry: _Optional[float] = ...) -> None: ...
 
 class CosineTable(_message.Message):
     __slots__ = ("cosines", "densities")

@@ -7,7 +7,7 @@ from typing import ClassVar as _ClassVar, Optional as _Optional, Union as _Union
 DESCRIPTOR: _descriptor.FileDescriptor
 
 class TruthColumns(_message.Message):
-    __slots__ = ("event_ids", "channels", "weights", "initial_state", "vertex", "particle_offsets", "particle_numbers", "momentum", "mass_gev", "parents", "decayed", "origin", "proper_time_s", "beam_offsets", "beam_energy_gev", "beam_time_ns", "object_particles")
+    __slots__ = ("event_ids", "channels", "weights", "initial_state", "vertex", "particle_offsets", "particle_numbers", "momentum", "mass_gev", "parents", "decayed", "origin", "proper_time_s", "beam_offsets", "beam_energy_gev", "beam_time_ns", "object_particles", "polarisation")
     EVENT_IDS_FIELD_NUMBER: _ClassVar[int]
     CHANNELS_FIELD_NUMBER: _ClassVar[int]
     WEIGHTS_FIELD_NUMBER: _ClassVar[int]
@@ -25,6 +25,7 @@ class TruthColumns(_message.Message):
     BEAM_ENERGY_GEV_FIELD_NUMBER: _ClassVar[int]
     BEAM_TIME_NS_FIELD_NUMBER: _ClassVar[int]
     OBJECT_PARTICLES_FIELD_NUMBER: _ClassVar[int]
+    POLARISATION_FIELD_NUMBER: _ClassVar[int]
     event_ids: bytes
     channels: bytes
     weights: bytes
@@ -42,7 +43,8 @@ class TruthColumns(_message.Message):
     beam_energy_gev: bytes
     beam_time_ns: bytes
     object_particles: bytes
-    def __init__(self, event_ids: _Optional[bytes] = ..., channels: _Optional[bytes] = ..., weights: _Optional[bytes] = ..., initial_state: _Optional[_Union[_event_pb2.EnergyMomentumColumns, _Mapping]] = ..., vertex: _Optional[_Union[PositionColumns, _Mapping]] = ..., particle_offsets: _Optional[bytes] = ..., particle_numbers: _Optional[bytes] = ..., momentum: _Optional[_Union[_event_pb2.EnergyMomentumColumns, _Mapping]] = ..., mass_gev: _Optional[bytes] = ..., parents: _Optional[bytes] = ..., decayed: _Optional[bytes] = ..., origin: _Optional[_Union[PositionColumns, _Mapping]] = ..., proper_time_s: _Optional[bytes] = ..., beam_offsets: _Optional[bytes] = ..., beam_energy_gev: _Optional[bytes] = ..., beam_time_ns: _Optional[bytes] = ..., object_particles: _Optional[bytes] = ...) -> None: ...
+    polarisation: _event_pb2.PolarisationColumns
+    def __init__(self, event_ids: _Optional[bytes] = ..., channels: _Optional[bytes] = ..., weights: _Optional[bytes] = ..., initial_state: _Optional[_Union[_event_pb2.EnergyMomentumColumns, _Mapping]] = ..., vertex: _Optional[_Union[PositionColumns, _Mapping]] = ..., particle_offsets: _Optional[bytes] = ..., particle_numbers: _Optional[bytes] = ..., momentum: _Optional[_Union[_event_pb2.EnergyMomentumColumns, _Mapping]] = ..., mass_gev: _Optional[bytes] = ..., parents: _Optional[bytes] = ..., decayed: _Optional[bytes] = ..., origin: _Optional[_Union[PositionColumns, _Mapping]] = ..., proper_time_s: _Optional[bytes] = ..., beam_offsets: _Optional[bytes] = ..., beam_energy_gev: _Optional[bytes] = ..., beam_time_ns: _Optional[bytes] = ..., object_particles: _Optional[bytes] = ..., polarisation: _Optional[_Union[_event_pb2.PolarisationColumns, _Mapping]] = ...) -> None: ...
 
 class PositionColumns(_message.Message):
     __slots__ = ("x_m", "y_m", "z_m")
