@@ -67,6 +67,7 @@ var withoutUnit = map[string]string{
 	"DescribeDecayResponse.decaying_fractions":      "shares of the particles",
 	"DescribeDecayResponse.surviving_fractions":     "shares of the particles",
 	"DirectionDetector.efficiency":                  "a probability",
+	"DisplacedVertexDetector.efficiency":            "probability in [0, 1]",
 	"EnergyTable.rates":                             "rates in any unit",
 	"EntryColumns.assignment_offsets":               "int32 rows",
 	"EntryColumns.assignments":                      "int16 objects of the event",
