@@ -53,6 +53,7 @@ func processorTime(folder, name string, operations int) measure {
 				//nolint:gosec // the program is our own
 				command := exec.CommandContext(ctx, program, "-test.run", "^$", "-test.bench", anchored(name),
 					"-test.benchtime", strconv.Itoa(n)+"x", "-test.cpu", "1")
+				command.Dir = folder // where its test data lies
 				output, err := command.CombinedOutput()
 				if err != nil {
 					return 0, fmt.Errorf("%s: %w: %s", name, err, lastLine(string(output)))

@@ -44,7 +44,23 @@ func rows() []row {
 				numpy("phase_space.py"),
 			),
 		},
+		{
+			name: "fit of four photons, proton missing, over scipy", limit: 300, aim: 500, atLeast: true,
+			measure: fits("missing"),
+		},
+		{
+			name: "fit of four photons and a proton, over scipy", limit: 300, aim: 500, atLeast: true,
+			measure: fits("measured"),
+		},
 	}
+}
+
+// fits compares constrained fits of the same events; proton says what is known of it.
+func fits(proton string) measure {
+	return timesFaster(
+		processorTime("./kinematics/constraint", "BenchmarkFourPhotons/"+proton, 50_000),
+		numpy("constrained_fit.py", proton),
+	)
 }
 
 // latency reads one figure of the open-loop generator.
