@@ -35,8 +35,9 @@ golden: ## compare the golden digests on amd64, amd64-v3 and emulated arm64 (nee
 	.ci/golden
 
 .PHONY: lint
-lint: ## golangci-lint, buf lint and shellcheck, pinned and installed on first use
+lint: ## golangci-lint, buf lint, shellcheck, ruff and mypy, pinned and installed on first use
 	.ci/lint
+	.ci/python lint
 
 .PHONY: generate
 generate: ## make the Go code of the protos again, with pinned tools

@@ -246,6 +246,7 @@ class AsyncJudgeStream:
 
     async def __anext__(self) -> tuple[Events, Verdicts]:
         """Return the next block with its verdict; errors are those of `JudgeStream`."""
+        self._client._guard.check()  # noqa: SLF001  # of one house
         if self._pump is None:
             chosen = await self._client.selection(self._selection)
             settings = Settings(chosen, **self._settings)

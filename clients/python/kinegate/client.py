@@ -92,7 +92,9 @@ class Client:
         self.close()
 
     def close(self) -> None:
-        """Close the connection and with it every stream."""
+        """Close the connection and with it every stream; a forked child leaves it alone."""
+        if self._guard.foreign:
+            return
         for stream in list(self._streams):
             stream.close()
         self._channel.close()

@@ -20,6 +20,7 @@ from kinegate.generation import Generated
 from kinegate.judge import DEAD
 from kinegate.progress import Bar
 from kinegate.tables import Table
+from kinegate.transport import ProcessGuard
 
 if TYPE_CHECKING:
     from collections.abc import AsyncIterator, Callable, Iterator
@@ -52,6 +53,7 @@ class _Stream:
         self._patience = patience
         self._bar = Bar(sample.total) if progress else None
         self._begun = False
+        self._guard = ProcessGuard("stream")
         # When the wait for the next frame began and how long it may take; 0 for no wait.
         self._waiting_since = 0.0
         self._allowed = DEAD
@@ -109,6 +111,7 @@ class _Stream:
         return since > 0 and time.monotonic() - since > self._allowed
 
     def _wait(self) -> None:
+        self._guard.check()
         self._allowed = DEAD * (1 + self._silent_tries)
         self._waiting_since = time.monotonic()
 

@@ -15,6 +15,7 @@ from typing import TYPE_CHECKING, Final, Self
 
 from kinegate.client import Client, connect
 from kinegate.errors import UsageError
+from kinegate.transport import ProcessGuard
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -36,6 +37,7 @@ class LocalServer:
     """
 
     def __init__(self, command: Sequence[str], wait: float) -> None:
+        self._guard = ProcessGuard("server")
         self.process = subprocess.Popen(  # noqa: S603  # the program that the caller named
             command,
             stdin=subprocess.DEVNULL,
@@ -83,7 +85,12 @@ class LocalServer:
         return connect(self.address, gate_address=self.gate_address, timeout=timeout)
 
     def stop(self) -> None:
-        """Stop the server: it drains for a moment, then it is killed."""
+        """Stop the server: it drains for a moment, then it is killed.
+
+        A forked child, which inherits this object, leaves the server of its parent alone.
+        """
+        if self._guard.foreign:
+            return
         atexit.unregister(self.stop)
         if self.process.poll() is None:
             self.process.terminate()

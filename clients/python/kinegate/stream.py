@@ -15,6 +15,7 @@ from kinegate import errors
 from kinegate.events import Events
 from kinegate.judge import Protocol, Settings, pause
 from kinegate.progress import Bar
+from kinegate.transport import ProcessGuard
 from kinegate.v1 import selection_pb2_grpc
 
 if TYPE_CHECKING:
@@ -46,7 +47,8 @@ class JudgeStream:
     def __init__(
         self, target: Target, events: Events | Iterable[Events], settings: Settings
     ) -> None:
-        self._pump = _Pump(target, settings)
+        self._guard = ProcessGuard("stream")
+        self._pump = _Pump(target, settings, self._guard)
         self._bar = None
         if settings.progress:
             self._bar = Bar(len(events) if isinstance(events, Events) else None)
@@ -65,6 +67,7 @@ class JudgeStream:
             ServerError: The server ended the stream for good.
             StreamBroken: No server answered within `patience`.
         """
+        self._guard.check()
         found = self._pump.take()
         if found is None:
             self.close()
@@ -114,7 +117,8 @@ class _Pump:
     gRPC runs a fourth, in which frames are written. All state is behind one condition.
     """
 
-    def __init__(self, target: Target, settings: Settings) -> None:
+    def __init__(self, target: Target, settings: Settings, guard: ProcessGuard) -> None:
+        self._guard = guard
         self.protocol = Protocol(settings)
         self._target = target
         self._changed = threading.Condition()
@@ -133,6 +137,8 @@ class _Pump:
             threading.Thread(target=run, args=arguments, daemon=True, name="kinegate-judge").start()
 
     def close(self) -> None:
+        if self._guard.foreign:  # the threads are the parent's, and so may be the lock
+            return
         with self._changed:
             self._closed = True
             self._stopped.set()

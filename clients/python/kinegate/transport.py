@@ -160,15 +160,21 @@ def _read(path: str | None) -> bytes | None:
 class ProcessGuard:
     """Refuses calls in a forked child, where an inherited channel can hang for ever."""
 
-    def __init__(self) -> None:
+    def __init__(self, what: str = "client") -> None:
         self._owner = os.getpid()
+        self._what = what
+
+    @property
+    def foreign(self) -> bool:
+        """True in any process but the one that made the client."""
+        return os.getpid() != self._owner
 
     def check(self) -> None:
         """Raise UsageError in any process but the one that made the client."""
-        if os.getpid() != self._owner:
+        if self.foreign:
             raise UsageError(
-                f"this client was made in process {self._owner} and is used in its forked child "
-                f"{os.getpid()}, where gRPC can hang; start workers with "
+                f"this {self._what} was made in process {self._owner} and is used in its forked "
+                f"child {os.getpid()}, where gRPC can hang; start workers with "
                 'multiprocessing.get_context("spawn"), or connect in the child'
             )
 
