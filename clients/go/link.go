@@ -68,7 +68,9 @@ func (c *Client) link(ctx context.Context, open *kinegatev1.JudgeOpen, limit tim
 		if err != nil {
 			return fail(err)
 		}
-		l.hangUp = func() { _ = conn.Close() } // it has nothing else to do
+		// Nobody waits for it: gRPC first tries for 5 s to say goodbye, which a dead line
+		// does not take.
+		l.hangUp = func() { go func() { _ = conn.Close() }() }
 		selections = kinegatev1.NewSelectionServiceClient(conn)
 	}
 	var options []grpc.CallOption
