@@ -1,0 +1,136 @@
+package main
+
+import (
+	"errors"
+	"fmt"
+	"strings"
+
+	"google.golang.org/protobuf/reflect/protoreflect"
+
+	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+)
+
+const head = `# Fields of a selection file
+
+Made from the comments of the contract by ` + "`go run ./proto/selectionpage`" + `; do not edit.
+
+A selection file is YAML: the fields of [Selection](#selection) by these names. A field that is
+left out is absent. Numbers are plain decimals in the unit that their name ends in; limits are
+half-open, [min, max). Unknown and doubled fields, anchors and tags are faults, and
+` + "`kinegate check FILE`" + ` names every fault with its line and column. The files in
+[testdata/selections](../testdata/selections) show one feature each.
+`
+
+// page writes the page from the protos in a folder.
+func page(folder string) (string, error) {
+	p := writer{}
+	var err error
+	if p.comments, err = comments(folder); err != nil {
+		return "", err
+	}
+	p.text.WriteString(head)
+	seen := map[protoreflect.FullName]bool{}
+	queue := []protoreflect.Descriptor{(&kinegatev1.Selection{}).ProtoReflect().Descriptor()}
+	for len(queue) > 0 {
+		d := queue[0]
+		queue = queue[1:]
+		if seen[d.FullName()] {
+			continue
+		}
+		seen[d.FullName()] = true
+		fmt.Fprintf(&p.text, "\n## %s\n\n%s\n", d.Name(), p.comment(string(d.Name())))
+		switch d := d.(type) {
+		case protoreflect.MessageDescriptor:
+			queue = append(queue, p.message(d)...)
+		case protoreflect.EnumDescriptor:
+			p.enum(d)
+		}
+	}
+	return p.text.String(), errors.Join(p.problems...)
+}
+
+// writer collects the page and what is wrong with it.
+type writer struct {
+	comments map[string]string
+	text     strings.Builder
+	problems []error
+}
+
+// comment returns the comment of a name, ready for a cell of a table.
+func (p *writer) comment(name string) string {
+	c := p.comments[name]
+	if c == "" {
+		p.problems = append(p.problems, fmt.Errorf("%s has no comment", name))
+	}
+	return strings.NewReplacer("|", `\|`, "<", "&lt;", "*", `\*`).Replace(c)
+}
+
+// message writes the fields of a message and returns what they refer to.
+func (p *writer) message(d protoreflect.MessageDescriptor) []protoreflect.Descriptor {
+	fields := d.Fields()
+	if fields.Len() == 0 {
+		p.text.WriteString("\nIt has no fields: write `{}`.\n")
+		return nil
+	}
+	p.text.WriteString("\n| field | value | meaning |\n| --- | --- | --- |\n")
+	var refers []protoreflect.Descriptor
+	for i := range fields.Len() {
+		f := fields.Get(i)
+		value, other := valueOf(f)
+		if other != nil {
+			refers = append(refers, other)
+		}
+		meaning := p.comment(string(d.Name()) + "." + string(f.Name()))
+		if group := f.ContainingOneof(); group != nil && !group.IsSynthetic() {
+			meaning = "One of " + string(group.Name()) + ": " + meaning
+		}
+		fmt.Fprintf(&p.text, "| `%s` | %s | %s |\n", f.Name(), value, meaning)
+	}
+	for i := range d.Oneofs().Len() {
+		if group := d.Oneofs().Get(i); !group.IsSynthetic() {
+			fmt.Fprintf(&p.text, "\nOf %s: %s\n", group.Name(), p.comment(string(d.Name())+"."+string(group.Name())))
+		}
+	}
+	return refers
+}
+
+// valueOf says in words what a field takes, and returns the message or enum it refers to.
+func valueOf(f protoreflect.FieldDescriptor) (text string, refers protoreflect.Descriptor) {
+	switch f.Kind() { //nolint:exhaustive // the kinds that files can hold; the rest shows its own name
+	case protoreflect.MessageKind:
+		refers = f.Message()
+	case protoreflect.EnumKind:
+		refers = f.Enum()
+	case protoreflect.StringKind:
+		text = "text"
+	case protoreflect.DoubleKind:
+		text = "number"
+	case protoreflect.BoolKind:
+		text = "true or false"
+	case protoreflect.Int32Kind, protoreflect.Int64Kind:
+		text = "whole number"
+	default:
+		text = f.Kind().String()
+	}
+	if refers != nil {
+		text = fmt.Sprintf("[%s](#%s)", refers.Name(), strings.ToLower(string(refers.Name())))
+	}
+	if f.IsList() {
+		text = "list of " + text
+	}
+	return text, refers
+}
+
+// enum writes the values of an enum but the one that stands for absence.
+func (p *writer) enum(d protoreflect.EnumDescriptor) {
+	p.text.WriteString("\n| value | meaning |\n| --- | --- |\n")
+	for i := range d.Values().Len() {
+		v := d.Values().Get(i)
+		meaning := p.comment(string(d.Name()) + "." + string(v.Name()))
+		if v.Number() == 0 {
+			fmt.Fprintf(&p.text, "| left out | %s |\n", meaning)
+			continue
+		}
+		fmt.Fprintf(&p.text, "| `%s` | %s |\n", v.Name(), meaning)
+	}
+}
