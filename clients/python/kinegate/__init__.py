@@ -46,7 +46,13 @@ from kinegate.errors import (
     UsageError,
 )
 from kinegate.events import COORDINATES, NEGATIVE, NEUTRAL, PHOTON, POSITIVE, Events
-from kinegate.explanation import Explanation, HypothesisExplanation, Pull, WindowExplanation
+from kinegate.explanation import (
+    Assignment,
+    Explanation,
+    HypothesisExplanation,
+    Pull,
+    WindowExplanation,
+)
 from kinegate.faults import Check
 from kinegate.generation import Generated, GenerationCheck, GenerationLike, Truth
 from kinegate.generationstream import AsyncGenerationStream, GenerationStream
@@ -82,6 +88,7 @@ __all__ = [
     "POSITIVE",
     "Annihilation",
     "Answer",
+    "Assignment",
     "AsyncClient",
     "AsyncGenerationStream",
     "AsyncJudgeStream",

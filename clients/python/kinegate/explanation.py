@@ -12,7 +12,7 @@ from kinegate.v1 import explanation_pb2, fit_pb2, verdict_pb2
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
-__all__ = ["Explanation", "HypothesisExplanation", "Pull", "WindowExplanation"]
+__all__ = ["Assignment", "Explanation", "HypothesisExplanation", "Pull", "WindowExplanation"]
 
 _SHOWN = 5  # assignments in a table
 
@@ -57,6 +57,92 @@ class Pull:
     """Measured minus fitted value over the standard deviation of that difference."""
 
 
+class Assignment:
+    """One assignment of objects to products, with one beam candidate."""
+
+    def __init__(
+        self, message: explanation_pb2.AssignmentExplanation, products: Sequence[str]
+    ) -> None:
+        self.message = message
+        """The part of the reply, for what the properties leave out."""
+        self._products = products
+
+    @property
+    def objects(self) -> dict[str, int]:
+        """Object within the event of each product that one stands for."""
+        pairs = zip(self._products, self.message.objects, strict=True)
+        return {product: row for product, row in pairs if row >= 0}
+
+    @property
+    def beam_row(self) -> int | None:
+        """Beam candidate within the event; None where the hypothesis uses none."""
+        return None if self.message.beam_row < 0 else self.message.beam_row
+
+    @property
+    def passed(self) -> bool:
+        """The condition and the fit hold."""
+        return self.message.passed
+
+    @property
+    def windows(self) -> list[WindowExplanation]:
+        """The windows of the condition, then those that are recorded."""
+        return [_window(w) for w in self.message.windows]
+
+    @property
+    def fit(self) -> explanation_pb2.FitExplanation | None:
+        """The fit; None where there is none, and where a window failed before it."""
+        return self.message.fit if self.message.HasField("fit") else None
+
+    @property
+    def fit_status(self) -> str:
+        """How the fit ended, such as "CONVERGED"; empty without one."""
+        if self.fit is None:
+            return ""
+        return fit_pb2.FitStatus.Name(self.fit.status).removeprefix("FIT_STATUS_")
+
+    @property
+    def probability(self) -> float | None:
+        """Probability of a larger chi-square; None unless the fit converged."""
+        fit = self.fit
+        return fit.probability if fit is not None and fit.HasField("probability") else None
+
+    @property
+    def pulls(self) -> list[Pull]:
+        """Pulls of the measured parameters; empty unless the fit converged."""
+        return [
+            Pull(p.name, x.name, x.unit, x.measured, x.uncertainty, x.fitted, x.pull)
+            for p in (self.fit.particles if self.fit is not None else ())
+            for x in p.parameters
+            if x.HasField("pull")
+        ]
+
+    @property
+    def fitted(self) -> dict[str, tuple[float, float, float, float]]:
+        """Fitted (E, px, py, pz) in GeV by reference, "beam" and "target" included."""
+        particles = self.fit.particles if self.fit is not None else ()
+        return {
+            p.name: (p.fitted.energy_gev, p.fitted.px_gev, p.fitted.py_gev, p.fitted.pz_gev)
+            for p in particles
+        }
+
+    def tables(self) -> list[Table]:
+        """Return windows, constraints and pulls."""
+        tables = []
+        if rows := [_window_row(w) for w in self.windows]:
+            columns = ("window", "value", "spread", "", "room to the limit")
+            tables.append(Table("", columns, rows))
+        if self.fit is not None:
+            rows = [
+                [c.name, _number(c.before, c.unit, 4), _number(c.after, c.unit, 2)]
+                for c in self.fit.constraints
+            ]
+            tables.append(Table("", ("constraint", "before the fit", "after"), rows))
+        if rows := [_pull_row(p) for p in self.pulls]:
+            columns = ("particle", "parameter", "measured", "fitted", "pull")
+            tables.append(Table("", columns, rows))
+        return tables
+
+
 class HypothesisExplanation:
     """What one hypothesis made of the event."""
 
@@ -80,85 +166,28 @@ class HypothesisExplanation:
         return self.message.obstacle
 
     @property
-    def best(self) -> explanation_pb2.AssignmentExplanation | None:
+    def assignments(self) -> list[Assignment]:
+        """The assignments, best first; at most as many as were asked for."""
+        products = self.message.products
+        return [Assignment(a, products) for a in self.message.assignments]
+
+    @property
+    def best(self) -> Assignment | None:
         """The assignment of the entry, or else the best that was possible; None for none."""
-        listed = self.message.assignments
-        marked = next((a for a in listed if a.best), None)
-        return marked or next(iter(listed), None)
-
-    def windows(self, assignment: int | None = None) -> list[WindowExplanation]:
-        """Return the windows of an assignment, by its place in the list; of the best without."""
-        chosen = self._chosen(assignment)
-        return [] if chosen is None else [_window(w) for w in chosen.windows]
-
-    @property
-    def fit(self) -> explanation_pb2.FitExplanation | None:
-        """The fit of the best assignment; None without one."""
-        best = self.best
-        return best.fit if best is not None and best.HasField("fit") else None
-
-    @property
-    def pulls(self) -> list[Pull]:
-        """Pulls of the best assignment's fit; empty unless it converged."""
-        fit = self.fit
-        if fit is None:
-            return []
-        return [
-            Pull(p.name, x.name, x.unit, x.measured, x.uncertainty, x.fitted, x.pull)
-            for p in fit.particles
-            for x in p.parameters
-            if x.HasField("pull")
-        ]
-
-    def _chosen(self, assignment: int | None) -> explanation_pb2.AssignmentExplanation | None:
-        return self.best if assignment is None else self.message.assignments[assignment]
+        listed = self.assignments
+        return next((a for a in listed if a.message.best), next(iter(listed), None))
 
     def tables(self) -> list[Table]:
         """Return the assignments, then windows, constraints and pulls of the best one."""
         verdict = "accepts" if self.accepted else "does not accept"
         title = f"{self.name} {verdict}: {self.message.reaction}"
-        if self.obstacle or self.best is None:
+        best = self.best
+        if self.obstacle or best is None:
             return [Table(title, note=self.obstacle or "no assignment")]
-        count = self.message.assignment_count
-        rows = [_assignment(a, self.message.products) for a in self.message.assignments[:_SHOWN]]
+        rows = [_assignment_row(a) for a in self.assignments[:_SHOWN]]
         columns = ("objects", "beam row", "passes", "fit", "probability")
-        return [Table(title, columns, rows, f"{count} assignments tried"), *self._details()]
-
-    def _details(self) -> list[Table]:
-        tables = []
-        if windows := self.windows():
-            rows = [
-                [
-                    w.label,
-                    _number(w.value, w.unit),
-                    "" if w.uncertainty is None else _number(w.uncertainty, w.unit, 2),
-                    "inside" if w.inside else "OUTSIDE",
-                    "" if w.room is None else _number(w.room, w.unit, 3),
-                ]
-                for w in windows
-            ]
-            columns = ("window", "value", "spread", "", "room to the limit")
-            tables.append(Table("", columns, rows))
-        if self.fit is not None:
-            rows = [
-                [c.name, _number(c.before, c.unit, 4), _number(c.after, c.unit, 2)]
-                for c in self.fit.constraints
-            ]
-            tables.append(Table("", ("constraint", "before the fit", "after"), rows))
-        if self.pulls:
-            rows = [
-                [
-                    p.particle,
-                    p.parameter,
-                    f"{_number(p.measured, p.unit, 5)} +- {_number(p.uncertainty, p.unit, 2)}",
-                    _number(p.fitted, p.unit, 5),
-                    f"{p.pull:+.2f}",
-                ]
-                for p in self.pulls
-            ]
-            columns = ("particle", "parameter", "measured", "fitted", "pull")
-            tables.append(Table("", columns, rows))
-        return tables
+        note = f"{self.message.assignment_count} assignments tried"
+        return [Table(title, columns, rows, note), *best.tables()]
 
 
 class Explanation(Answer[explanation_pb2.ExplainVerdictResponse]):
@@ -215,20 +244,30 @@ def _window(message: explanation_pb2.WindowExplanation) -> WindowExplanation:
     )
 
 
-def _assignment(
-    message: explanation_pb2.AssignmentExplanation, products: Sequence[str]
-) -> list[str]:
-    pairs = zip(products, message.objects, strict=True)
-    fit = message.fit if message.HasField("fit") else None
-    status = "" if fit is None else fit_pb2.FitStatus.Name(fit.status)
-    probable = fit is not None and fit.HasField("probability")
+def _assignment_row(assignment: Assignment) -> list[str]:
     return [
-        ", ".join(f"{product}={row}" for product, row in pairs if row >= 0),
-        "" if message.beam_row < 0 else str(message.beam_row),
-        "yes" if message.passed else "no",
-        status.removeprefix("FIT_STATUS_").lower(),
-        f"{fit.probability:.4f}" if fit is not None and probable else "",
+        ", ".join(f"{product}={row}" for product, row in assignment.objects.items()),
+        "" if assignment.beam_row is None else str(assignment.beam_row),
+        "yes" if assignment.passed else "no",
+        assignment.fit_status.replace("_", " ").lower(),
+        "" if assignment.probability is None else f"{assignment.probability:.4f}",
     ]
+
+
+def _window_row(w: WindowExplanation) -> list[str]:
+    return [
+        w.label,
+        _number(w.value, w.unit),
+        "" if w.uncertainty is None else _number(w.uncertainty, w.unit, 2),
+        "inside" if w.inside else "OUTSIDE",
+        "" if w.room is None else _number(w.room, w.unit, 3),
+    ]
+
+
+def _pull_row(p: Pull) -> list[str]:
+    measured = f"{_number(p.measured, p.unit, 5)} +- {_number(p.uncertainty, p.unit, 2)}"
+    fitted = _number(p.fitted, p.unit, 5)
+    return [p.particle, p.parameter, measured, fitted, f"{p.pull:+.2f}"]
 
 
 def _number(value: float, unit: str, digits: int = 6) -> str:
