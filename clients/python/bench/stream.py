@@ -1,14 +1,17 @@
 """A million events from numpy through the judge stream and back to numpy.
 
-Prints how processor time and wall time compare with the server's own processor time, and how
-much faster blocks are than one event a message. Usage: python bench/stream.py [events]
+Prints how processor time and wall time compare with the server's own processor time, for a
+selection of pair windows and one with constrained fits, and how much faster blocks are than one
+event a message. Usage: python bench/stream.py [events]
 """
 
 from __future__ import annotations
 
+import copy
 import sys
 import time
 from pathlib import Path
+from typing import Any
 
 import numpy as np
 
@@ -18,7 +21,7 @@ MASS = 0.1349768
 
 
 def six_photons(count: int) -> kinegate.Events:
-    """Make six photons of three neutral pions an event, out of order."""
+    """Make six photons of three neutral pions an event, out of order, measured and with errors."""
     rng = np.random.default_rng(5)
     boost = rng.normal(0, 0.3, (count, 3, 3))
     direction = rng.normal(size=(count, 3, 3))
@@ -32,16 +35,29 @@ def six_photons(count: int) -> kinegate.Events:
         photons.append(p + boost * (sign * along / (MASS * (energy + MASS)) + 1 / 2))
     p = np.concatenate(photons, axis=1)
     p = np.ascontiguousarray(p[:, rng.permutation(6)])
-    norm = np.linalg.norm(p, axis=2)
+    energy = np.linalg.norm(p, axis=2)
+    theta = np.arctan2(np.hypot(p[..., 0], p[..., 1]), p[..., 2])
+    spread = [0.02 * np.sqrt(energy), np.full_like(energy, 0.005), 0.005 / np.sin(theta)]
+    phi = np.arctan2(p[..., 1], p[..., 0])
+    measured = [
+        true + sigma * np.clip(rng.normal(size=true.shape), -3, 3)
+        for true, sigma in zip(
+            (energy, theta, np.arctan2(p[..., 1], p[..., 0])), spread, strict=True
+        )
+    ]
+    covariance = np.zeros((energy.size, 6))
+    for place, sigma in zip((0, 3, 5), spread, strict=True):
+        covariance[:, place] = sigma.ravel() ** 2
     return kinegate.Events.of(
-        momentum_gev=norm,
-        theta_rad=np.arctan2(np.hypot(p[..., 0], p[..., 1]), p[..., 2]),
-        phi_rad=np.arctan2(p[..., 1], p[..., 0]),
+        momentum_gev=measured[0],
+        theta_rad=np.clip(measured[1], 0, np.pi),
+        phi_rad=measured[2],
         classes=np.full(6, kinegate.PHOTON),
+        covariance=covariance,
     )
 
 
-SELECTION = {
+SELECTION: dict[str, Any] = {
     "name": "pions",
     "hypotheses": [
         {
@@ -53,8 +69,8 @@ SELECTION = {
                         "window": {
                             "invariant_mass": {
                                 "products": [f"pi0[{i}]"],
-                                "min_gev": 0.11,
-                                "max_gev": 0.16,
+                                "min_gev": 0.10,
+                                "max_gev": 0.17,
                             }
                         }
                     }
@@ -65,6 +81,12 @@ SELECTION = {
     ],
 }
 
+FITTED = copy.deepcopy(SELECTION)
+FITTED["hypotheses"][0]["fit"] = {
+    "conservation": "CONSERVATION_NONE",
+    "masses": [{"products": [f"pi0[{i}]"]} for i in range(3)],
+}
+
 
 def server_cpu(process: int) -> float:
     """Return the processor time of a process in second; USER_HZ is 100 on every Linux."""
@@ -73,13 +95,16 @@ def server_cpu(process: int) -> float:
 
 
 def measure(
-    server: kinegate.LocalServer, sample: kinegate.Events, events_per_block: int, entries: str
+    server: kinegate.LocalServer,
+    sample: kinegate.Events,
+    source: dict[str, Any],
+    events_per_block: int = 1000,
 ) -> tuple[float, float, float, int]:
     """Return wall time, client's and server's processor time, and accepted events."""
     with server.connect() as client:
-        selection = client.selection(SELECTION)
+        selection = client.selection(source)
         wall, own, other = time.perf_counter(), time.process_time(), server_cpu(server.process.pid)
-        stream = client.judge(sample, selection, events_per_block=events_per_block, entries=entries)
+        stream = client.judge(sample, selection, events_per_block=events_per_block, entries="none")
         accepted = sum(int(v.gate.sum()) for _, v in stream)
         return (
             time.perf_counter() - wall,
@@ -94,17 +119,18 @@ def main() -> None:
     count = int(sys.argv[1]) if len(sys.argv) > 1 else 1_000_000
     sample = six_photons(count)
     with kinegate.start_server() as server:
-        measure(server, sample.cut(0, 20_000), 1000, "none")
-        wall, own, other, accepted = measure(server, sample, 1000, "none")
-        print(f"{count} events in blocks of 1,000: {wall:.2f} s, {accepted} accepted")
-        print(f"  processor: server {other:.2f} s, client {own:.2f} s")
-        print(f"  both processors over the server's: {(own + other) / other:.2f}")
-        print(f"  wall time over the server's processor time: {wall / other:.2f}")
-        few = sample.cut(0, min(count, 20_000))
-        single, _, _, _ = measure(server, few, 1, "none")
-        ratio = single / len(few) / (wall / count)
-        each = single / len(few) * 1e6
-        print(f"  one event a message: {each:.0f} us an event, {ratio:.0f} times slower")
+        for name, source, limit in (("pair windows", SELECTION, 2.0), ("fits", FITTED, 1.3)):
+            measure(server, sample.cut(0, 20_000), source)
+            wall, own, other, accepted = measure(server, sample, source)
+            print(f"{name}: {count} events in blocks of 1,000, {accepted} accepted")
+            print(f"  {wall:.2f} s; processor: server {other:.2f} s, client {own:.2f} s")
+            print(f"  both processors over the server's: {(own + other) / other:.2f}")
+            print(f"  wall time over the server's: {wall / other:.2f}, limit {limit}")
+            few = sample.cut(0, min(count, 10_000))
+            single, _, _, _ = measure(server, few, source, 1)
+            ratio = single / len(few) / (wall / count)
+            each = single / len(few) * 1e6
+            print(f"  one event a message: {each:.0f} us an event, {ratio:.0f} times slower")
 
 
 if __name__ == "__main__":

@@ -237,13 +237,6 @@ def test_both_clients_ask_every_question() -> None:
 WITHOUT_EXAMPLE = {"Cancelled", "Internal", "PermissionDenied", "Unauthenticated", "Unimplemented"}
 WITHOUT_EXAMPLE |= {"Assignment", "Explanation", "Fits", "HypothesisExplanation", "Pull"}
 WITHOUT_EXAMPLE |= {"WindowExplanation"}
-    "Assignment",
-    "Explanation",
-    "Fits",
-    "HypothesisExplanation",
-    "Pull",
-    "WindowExplanation",
-}
 
 
 def test_every_public_name_has_an_example_that_is_run() -> None:
