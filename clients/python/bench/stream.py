@@ -41,9 +41,7 @@ def six_photons(count: int) -> kinegate.Events:
     phi = np.arctan2(p[..., 1], p[..., 0])
     measured = [
         true + sigma * np.clip(rng.normal(size=true.shape), -3, 3)
-        for true, sigma in zip(
-            (energy, theta, np.arctan2(p[..., 1], p[..., 0])), spread, strict=True
-        )
+        for true, sigma in zip((energy, theta, phi), spread, strict=True)
     ]
     covariance = np.zeros((energy.size, 6))
     for place, sigma in zip((0, 3, 5), spread, strict=True):
