@@ -24,7 +24,16 @@ const (
 	Accepted EntryStatus = iota + 1
 	// Rejected marks the best possible assignment where none passes.
 	Rejected
+	// FitFailed marks the same where its fit did not converge.
+	FitFailed
 )
+
+// FitStatus says how the fit of an entry ended. The numbers are those of the contract
+// and, above NoFit, those of constraint.Status.
+type FitStatus uint8
+
+// NoFit marks an entry without a fit.
+const NoFit FitStatus = 0
 
 // VerdictBlock holds the verdicts on one Block, event for event.
 type VerdictBlock struct {
@@ -59,31 +68,58 @@ type Entries struct {
 	Status []EntryStatus
 	// Tried is the number of assignments tried.
 	Tried []int32
-	// ChiSquare, NDF and Probability of the fit; NaN, 0 and NaN without one.
-	ChiSquare   []float64
-	NDF         []int16
-	Probability []float64
+	// Fits are the fits of the entries; absent where no hypothesis has one.
+	Fits *Fits
 	// Observables that the hypothesis records, in its order; NaN is not computed.
 	Observables       []float64
 	ObservableOffsets []int32
+	// Uncertainties are their standard deviations, NaN for none; absent where no
+	// hypothesis asks for them.
+	Uncertainties *Uncertainties
 	// Assignment is, for each product, the object's index within its event, or
 	// -1 for a product that no object stands for.
 	Assignment        []int16
 	AssignmentOffsets []int32
 }
 
+// Fits are the fits of entries, one each.
+type Fits struct {
+	Status []FitStatus
+	// ChiSquare, DegreesOfFreedom and Probability; NaN, 0 and NaN without a fit.
+	ChiSquare        []float64
+	DegreesOfFreedom []int16
+	Probability      []float64
+	// Iterations is the number of steps.
+	Iterations []int16
+}
+
+// Uncertainties are the standard deviations of observables.
+type Uncertainties struct {
+	Values []float64
+}
+
+// Fit is the fit of one entry.
+type Fit struct {
+	Status           FitStatus
+	ChiSquare        float64
+	DegreesOfFreedom int16
+	Probability      float64
+	Iterations       int16
+}
+
 // Entry is one row of Entries. Its slices alias the columns.
 type Entry struct {
-	Hypothesis  int16
-	BeamRow     int16
-	Weight      float64
-	Status      EntryStatus
-	Tried       int32
-	ChiSquare   float64
-	NDF         int16
-	Probability float64
+	Hypothesis int16
+	BeamRow    int16
+	Weight     float64
+	Status     EntryStatus
+	Tried      int32
+	// Fit is used where the entries have fits.
+	Fit         Fit
 	Observables []float64
-	Assignment  []int16
+	// Uncertainties is as long as Observables where the entries have them.
+	Uncertainties []float64
+	Assignment    []int16
 }
 
 // Len is the number of entries.
@@ -93,26 +129,44 @@ func (e *Entries) Len() int { return len(e.Hypothesis) }
 func (e *Entries) Row(k int) Entry {
 	o, oEnd := e.ObservableOffsets[k], e.ObservableOffsets[k+1]
 	a, aEnd := e.AssignmentOffsets[k], e.AssignmentOffsets[k+1]
-	return Entry{
+	row := Entry{
 		Hypothesis: e.Hypothesis[k], BeamRow: e.BeamRow[k], Weight: e.Weight[k],
 		Status: e.Status[k], Tried: e.Tried[k],
-		ChiSquare: e.ChiSquare[k], NDF: e.NDF[k], Probability: e.Probability[k],
 		Observables: e.Observables[o:oEnd:oEnd], Assignment: e.Assignment[a:aEnd:aEnd],
 	}
+	if f := e.Fits; f != nil {
+		row.Fit = Fit{f.Status[k], f.ChiSquare[k], f.DegreesOfFreedom[k], f.Probability[k], f.Iterations[k]}
+	}
+	if u := e.Uncertainties; u != nil {
+		row.Uncertainties = u.Values[o:oEnd:oEnd]
+	}
+	return row
 }
 
-// Reset empties the columns and keeps their memory.
-func (e *Entries) Reset() {
+// Reset empties the columns and keeps their memory; it says which optional ones there
+// will be.
+func (e *Entries) Reset(fits, uncertainties bool) {
+	if !fits {
+		e.Fits = nil
+	} else if e.Fits == nil {
+		e.Fits = &Fits{}
+	}
+	if !uncertainties {
+		e.Uncertainties = nil
+	} else if e.Uncertainties == nil {
+		e.Uncertainties = &Uncertainties{}
+	}
+	e.Fits.cut(0)
+	e.Uncertainties.cut(0)
 	*e = Entries{
+		Fits:              e.Fits,
+		Uncertainties:     e.Uncertainties,
 		Offsets:           append(e.Offsets[:0], 0),
 		Hypothesis:        e.Hypothesis[:0],
 		BeamRow:           e.BeamRow[:0],
 		Weight:            e.Weight[:0],
 		Status:            e.Status[:0],
 		Tried:             e.Tried[:0],
-		ChiSquare:         e.ChiSquare[:0],
-		NDF:               e.NDF[:0],
-		Probability:       e.Probability[:0],
 		Observables:       e.Observables[:0],
 		ObservableOffsets: append(e.ObservableOffsets[:0], 0),
 		Assignment:        e.Assignment[:0],
@@ -127,9 +181,16 @@ func (e *Entries) Append(row Entry) {
 	e.Weight = append(e.Weight, row.Weight)
 	e.Status = append(e.Status, row.Status)
 	e.Tried = append(e.Tried, row.Tried)
-	e.ChiSquare = append(e.ChiSquare, row.ChiSquare)
-	e.NDF = append(e.NDF, row.NDF)
-	e.Probability = append(e.Probability, row.Probability)
+	if f := e.Fits; f != nil {
+		f.Status = append(f.Status, row.Fit.Status)
+		f.ChiSquare = append(f.ChiSquare, row.Fit.ChiSquare)
+		f.DegreesOfFreedom = append(f.DegreesOfFreedom, row.Fit.DegreesOfFreedom)
+		f.Probability = append(f.Probability, row.Fit.Probability)
+		f.Iterations = append(f.Iterations, row.Fit.Iterations)
+	}
+	if u := e.Uncertainties; u != nil {
+		u.Values = append(u.Values, row.Uncertainties...)
+	}
 	e.Observables = append(e.Observables, row.Observables...)
 	e.ObservableOffsets = append(e.ObservableOffsets, int32(len(e.Observables))) //nolint:gosec // bounded by the reply's size
 	e.Assignment = append(e.Assignment, row.Assignment...)
@@ -139,16 +200,17 @@ func (e *Entries) Append(row Entry) {
 // DropEvent takes the entries of the event being written out again.
 func (e *Entries) DropEvent() {
 	n := int(e.Offsets[len(e.Offsets)-1])
+	e.Fits.cut(n)
+	e.Uncertainties.cut(int(e.ObservableOffsets[n]))
 	*e = Entries{
+		Fits:              e.Fits,
+		Uncertainties:     e.Uncertainties,
 		Offsets:           e.Offsets,
 		Hypothesis:        e.Hypothesis[:n],
 		BeamRow:           e.BeamRow[:n],
 		Weight:            e.Weight[:n],
 		Status:            e.Status[:n],
 		Tried:             e.Tried[:n],
-		ChiSquare:         e.ChiSquare[:n],
-		NDF:               e.NDF[:n],
-		Probability:       e.Probability[:n],
 		Observables:       e.Observables[:e.ObservableOffsets[n]],
 		ObservableOffsets: e.ObservableOffsets[:n+1],
 		Assignment:        e.Assignment[:e.AssignmentOffsets[n]],
@@ -159,4 +221,25 @@ func (e *Entries) DropEvent() {
 // EndEvent closes the event being written; the next Append starts another.
 func (e *Entries) EndEvent() {
 	e.Offsets = append(e.Offsets, int32(e.Len())) //nolint:gosec // bounded by the reply's size
+}
+
+// cut keeps the first n fits.
+func (f *Fits) cut(n int) {
+	if f == nil {
+		return
+	}
+	*f = Fits{
+		Status:           f.Status[:n],
+		ChiSquare:        f.ChiSquare[:n],
+		DegreesOfFreedom: f.DegreesOfFreedom[:n],
+		Probability:      f.Probability[:n],
+		Iterations:       f.Iterations[:n],
+	}
+}
+
+// cut keeps the first n values.
+func (u *Uncertainties) cut(n int) {
+	if u != nil {
+		u.Values = u.Values[:n]
+	}
 }

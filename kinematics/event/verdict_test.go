@@ -26,7 +26,7 @@ func TestBits(t *testing.T) {
 func TestEntriesReadBack(t *testing.T) {
 	var e event.Entries
 	for range 2 { // the second round runs in kept memory
-		e.Reset()
+		e.Reset(false, false)
 		e.Append(event.Entry{Hypothesis: 1, BeamRow: -1, Weight: 1, Observables: []float64{3, 4}, Assignment: []int16{0, -1, 2}})
 		e.EndEvent()
 		e.EndEvent()

@@ -15,7 +15,7 @@ const opCompile = "selection.Compile"
 // as hypotheses[1].condition.all_of[0].window.invariant_mass.products[0], the value
 // and what is allowed. The program keeps no reference to the selection.
 func Compile(s *Selection, table *particle.Table) (*Program, error) {
-	c := &compiler{table: table, program: &Program{budget: s.AssignmentBudget}}
+	c := &compiler{table: table, program: &Program{budget: s.AssignmentBudget}, orders: map[int]order{}}
 	c.name("name", s.Name)
 	if n := len(s.Hypotheses); n < 1 || n > MaxHypotheses {
 		c.fault("hypotheses", strconv.Itoa(n), "1 to "+strconv.Itoa(MaxHypotheses)+" hypotheses")
@@ -33,7 +33,7 @@ func Compile(s *Selection, table *particle.Table) (*Program, error) {
 		h := &s.Hypotheses[i]
 		c.unique(at+".name", h.Name, i, names)
 		if i < MaxHypotheses {
-			c.hypothesis(at, h)
+			c.hypothesis(at, i, h)
 		}
 	}
 	groups := map[string]int{}
@@ -53,7 +53,18 @@ type compiler struct {
 	table   *particle.Table
 	program *Program
 	faults  fault.List
+	// orders say how the assignments of each sound hypothesis are ranked.
+	orders map[int]order
 }
+
+// order is how the assignments of a hypothesis are ranked.
+type order uint8
+
+const (
+	byIndex order = iota
+	byMasses
+	byProbability
+)
 
 // fault adds a fault of a field and returns it for further parts.
 func (c *compiler) fault(field, value, allowed string) *fault.Error {
@@ -113,13 +124,17 @@ func (c *compiler) group(at string, s *Selection, g *Group, names map[string]int
 	for k, name := range g.Hypotheses {
 		field := indexed(at+".hypotheses", k)
 		i, known := names[name]
+		rank, sound := c.orders[i]
 		switch {
 		case !known:
 			c.fault(field, name, "the name of a hypothesis").Because("no such hypothesis")
 		case slices.Contains(members, i):
 			c.fault(field, name, "each hypothesis once").Because("stands twice")
-		case s.Hypotheses[i].Ranking == nil:
+		case sound && rank == byIndex:
 			c.fault(field, name, "a hypothesis with a ranking").Because("its assignments have no rank to compare")
+		case sound && len(members) > 0 && c.orders[members[0]] != byIndex && rank != c.orders[members[0]]:
+			c.fault(field, name, "hypotheses that are ranked in the same way").
+				Because("is ranked otherwise than " + s.Hypotheses[members[0]].Name)
 		default:
 			members = append(members, i)
 		}

@@ -14,6 +14,12 @@ func (d *drafter) beam() {
 		return
 	}
 	at := d.at + ".beam"
+	if d.reaction == nil {
+		if source.Tagged != nil {
+			d.timeWindows(at+".tagged", source.Tagged)
+		}
+		return
+	}
 	if len(d.reaction.Initial) != 2 {
 		d.fault(at, "given", "absent, since the reaction has no two initial particles")
 		return

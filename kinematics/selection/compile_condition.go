@@ -22,6 +22,8 @@ func (d *drafter) condition() {
 	for _, part := range conjuncts(root) {
 		last, candidate := d.needs(&part)
 		switch {
+		case needsFit(&part):
+			d.out.fitted = append(d.out.fitted, part)
 		case last < 0 && candidate:
 			d.out.candidate = append(d.out.candidate, part)
 		case last < 0:
@@ -53,6 +55,7 @@ func (d *drafter) check(at string, c *Condition, depth int) (check, bool) {
 	switch {
 	case c.Window != nil:
 		w, ok := d.window(at+".window", c.Window, true)
+		d.show(at+".window", c.Window, &w)
 		return check{operation: opWindow, window: w}, ok
 	case c.Not != nil:
 		part, ok := d.check(at+".not", c.Not, depth+1)
@@ -109,12 +112,39 @@ func (d *drafter) needs(c *check) (last int, candidate bool) {
 	return last, candidate
 }
 
+// needsFit reports whether a check needs the fit.
+func needsFit(c *check) bool {
+	if c.operation == opWindow {
+		return c.window.observable == FitProbability
+	}
+	for i := range c.parts {
+		if needsFit(&c.parts[i]) {
+			return true
+		}
+	}
+	return false
+}
+
 // ranking compiles the ranking.
 func (d *drafter) ranking() {
+	free := d.out.fit != nil && d.out.fit.problem.DegreesOfFreedom() > 0
 	if d.from.Ranking == nil {
+		d.out.byFit = free
 		return
 	}
 	references := d.from.Ranking.ClosestMasses
+	if d.from.Ranking.FitProbability {
+		d.out.byFit = free
+		switch {
+		case len(references) > 0:
+			d.fault(d.at+".ranking", "both", "exactly one of closest_masses and fit_probability")
+		case d.from.Fit == nil:
+			d.fault(d.at+".ranking.fit_probability", "no fit", "a hypothesis with a fit")
+		case d.out.fit != nil && !free:
+			d.fault(d.at+".ranking.fit_probability", "0 degrees of freedom", "a fit with at least 1 degree of freedom")
+		}
+		return
+	}
 	at := d.at + ".ranking.closest_masses.masses"
 	if n := len(references); n < 1 || n > MaxReferences {
 		d.fault(at, strconv.Itoa(n), "1 to "+strconv.Itoa(MaxReferences)+" masses")
@@ -137,7 +167,7 @@ func (d *drafter) reference(at string, r *MassReference) {
 		if !(out.reference >= 0) || !finite(out.reference) {
 			d.fault(at+".mass_gev", fault.Text(out.reference), ">= 0")
 		}
-	case len(r.Products) == 1:
+	case len(r.Products) == 1 && d.reaction != nil:
 		if i, err := d.reaction.Product(d.table, r.Products[0]); err == nil {
 			out.reference = d.reaction.Products[i].Particle.Mass
 		}
@@ -150,7 +180,7 @@ func (d *drafter) reference(at string, r *MassReference) {
 			d.fault(at+".scale_gev", fault.Text(out.scale), "> 0")
 		}
 	}
-	if len(d.faults) == before && d.masses(at, &out.mass) {
+	if d.reaction != nil && len(d.faults) == before && d.masses(at, &out.mass) {
 		d.out.ranking = append(d.out.ranking, out)
 	}
 }
@@ -164,6 +194,7 @@ func (d *drafter) record() []string {
 		if !ok {
 			continue
 		}
+		d.show(indexed(d.at+".record", k), v, &w)
 		d.out.record = append(d.out.record, w)
 		labels = append(labels, label(v))
 	}

@@ -20,8 +20,10 @@ type drafter struct {
 	reaction *reaction.Reaction
 	// seen is how each product that does not decay is measured, massFromEvent where
 	// its mass comes from, slotOf its slot or -1.
+	// merged is the least energy of the cluster that stands for it, 0 for none.
 	seen          []Measurement
 	massFromEvent []bool
+	merged        []float64
 	slotOf        []int
 	// windows counts the windows so far.
 	windows int
@@ -29,22 +31,35 @@ type drafter struct {
 }
 
 // hypothesis checks and compiles a hypothesis.
-func (c *compiler) hypothesis(at string, h *Hypothesis) {
+func (c *compiler) hypothesis(at string, i int, h *Hypothesis) {
 	d := &drafter{compiler: c, at: at, from: h}
 	d.out.salt = salt(h.Name)
 	d.role()
-	if !d.readReaction() {
-		return
-	}
+	readable := d.readReaction()
 	d.measurements()
-	d.slots()
-	d.conjugate()
+	if readable {
+		d.slots()
+		d.conjugate()
+	}
 	d.beam()
 	d.extraObjects()
+	d.fit()
 	d.condition()
 	d.ranking()
 	labels := d.record()
+	if !readable {
+		return
+	}
 	d.order()
+	d.out.uncertain = h.RecordUncertainties && len(d.out.record) > 0
+	switch {
+	case d.out.byFit:
+		c.orders[i] = byProbability
+	case len(d.out.ranking) > 0:
+		c.orders[i] = byMasses
+	default:
+		c.orders[i] = byIndex
+	}
 	products := make([]string, len(d.reaction.Products))
 	for i := range products {
 		products[i] = d.reaction.Products[i].Name
@@ -52,7 +67,10 @@ func (c *compiler) hypothesis(at string, h *Hypothesis) {
 	c.program.hypotheses = append(c.program.hypotheses, d.out)
 	c.program.outlines = append(c.program.outlines, Outline{
 		Name: h.Name, Reaction: d.reaction.String(), Products: products, Observables: labels,
+		DegreesOfFreedom: d.out.degreesOfFreedom(),
 	})
+	c.program.fits = c.program.fits || d.out.fit != nil
+	c.program.uncertain = c.program.uncertain || d.out.uncertain
 }
 
 // role checks the role and the prescale.
@@ -123,12 +141,18 @@ func (d *drafter) adoptStructured(err error) {
 
 // measurements settles how each product is seen.
 func (d *drafter) measurements() {
-	products := d.reaction.Products
+	var products []reaction.Product
+	if d.reaction != nil {
+		products = d.reaction.Products
+	}
 	d.seen = make([]Measurement, len(products))
 	d.massFromEvent = make([]bool, len(products))
+	d.merged = make([]float64, len(products))
 	listed := make([]bool, len(products))
-	for _, i := range d.reaction.Leaves() {
-		d.seen[i] = defaultMeasurement(&products[i].Particle)
+	for i := range products {
+		if len(products[i].Daughters) == 0 {
+			d.seen[i] = defaultMeasurement(&products[i].Particle)
+		}
 	}
 	for k := range d.from.Measurements {
 		m := &d.from.Measurements[k]
@@ -152,11 +176,33 @@ func (d *drafter) measurements() {
 		if m.Measurement != 0 {
 			d.seen[i] = m.Measurement
 		}
+		if m.Merged != nil {
+			d.mergedPhotons(at, m, i)
+		}
 		if m.MassFromEvent && d.seen[i] != Full {
 			d.fault(at+".mass_from_event", "true", "a product that is measured in full")
 		}
 		d.massFromEvent[i] = m.MassFromEvent
 	}
+}
+
+// mergedPhotons lets a photon cluster stand for product i.
+func (d *drafter) mergedPhotons(at string, m *ProductMeasurement, i int) {
+	p := &d.reaction.Products[i].Particle
+	if m.Measurement != 0 && m.Measurement != Full {
+		d.fault(at+".measurement", strconv.Itoa(int(m.Measurement)), "absent or full where one cluster stands for the product")
+	}
+	if m.MassFromEvent {
+		d.fault(at+".mass_from_event", "true", "false where one cluster stands for the product")
+	}
+	if p.ChargeThirds() != 0 || !(p.Mass > 0) {
+		d.fault(at+".merged_photons", p.Name, "a neutral product with a mass")
+		return
+	}
+	if x := m.Merged.MinEnergyGeV; !(x > p.Mass) || !finite(x) {
+		d.fault(at+".merged_photons.min_energy_gev", fault.Text(x), "> "+fault.Text(p.Mass)+", the mass of "+p.Name)
+	}
+	d.seen[i], d.merged[i] = Full, m.Merged.MinEnergyGeV
 }
 
 // defaultMeasurement is how a product that is not listed is seen.
@@ -172,6 +218,9 @@ func defaultMeasurement(p *particle.Particle) Measurement {
 
 // product resolves a reference to a product.
 func (d *drafter) product(field, reference string) (int, bool) {
+	if d.reaction == nil {
+		return 0, false // the reaction has its own fault
+	}
 	i, err := d.reaction.Product(d.table, reference)
 	if err != nil {
 		d.adopt(field, err)
@@ -191,11 +240,11 @@ func (d *drafter) slots() {
 			continue
 		}
 		d.slotOf[i] = len(d.out.slots)
-		k := kind{mass: products[i].Particle.Mass, fromEvent: d.massFromEvent[i]}
+		k := kind{mass: products[i].Particle.Mass, fromEvent: d.massFromEvent[i], merged: d.merged[i] > 0}
 		if k.fromEvent {
 			k.mass = 0
 		}
-		s := slot{product: i, kind: d.kind(k), full: d.seen[i] == Full, after: -1}
+		s := slot{product: i, kind: d.kind(k), full: d.seen[i] == Full, after: -1, minEnergy: d.merged[i]}
 		d.out.slots = append(d.out.slots, s)
 		if s.full && !slices.Contains(d.out.kinds, s.kind) {
 			d.out.kinds = append(d.out.kinds, s.kind)
@@ -208,8 +257,12 @@ func (d *drafter) slots() {
 
 // signature returns the number of what an object must be to stand for a particle.
 func (d *drafter) signature(p *particle.Particle, s *slot) uint16 {
+	class := classOf(p)
+	if s.minEnergy > 0 {
+		class = event.Photon
+	}
 	return intern(&d.program.signatures, signature{
-		class: uint8(classOf(p)), species: speciesOf(p), full: s.full, kind: s.kind,
+		class: uint8(class), species: speciesOf(p), full: s.full, kind: s.kind, minEnergy: s.minEnergy,
 	})
 }
 
@@ -318,6 +371,7 @@ func (d *drafter) shape(products []int, conjugate bool) string {
 		if d.massFromEvent[i] {
 			part += "m"
 		}
+		part += fault.Text(d.merged[i])
 		parts = append(parts, part+d.shape(p.Daughters, conjugate))
 	}
 	slices.Sort(parts)

@@ -27,7 +27,8 @@ func (d *drafter) window(at string, v *Window, limits bool) (window, bool) {
 	w.slots = d.list(at, f.products, f.single, v.Products, d.needsFull(v))
 	w.second = d.list(at, f.second, f.single, v.Second, d.needsFull(v))
 	d.incoming(at, f, v)
-	if len(d.faults) > before {
+	d.decaying(at, v)
+	if d.reaction == nil || len(d.faults) > before {
 		return window{}, false
 	}
 	return d.finish(at, v, w)
@@ -35,7 +36,8 @@ func (d *drafter) window(at string, v *Window, limits bool) (window, bool) {
 
 // limits compiles the limits of a window.
 func (d *drafter) limits(at string, f form, v *Window, allowed bool, w *window) {
-	low, high := at+".min_"+f.unit, at+".max_"+f.unit
+	lowName, highName := f.limits()
+	low, high := at+"."+lowName, at+"."+highName
 	w.low, w.high = math.Inf(-1), math.Inf(1)
 	if !allowed {
 		if v.Min != nil {
@@ -53,7 +55,7 @@ func (d *drafter) limits(at string, f form, v *Window, allowed bool, w *window) 
 		w.high = *v.Max
 	}
 	if v.Min != nil && v.Max != nil && !(w.low < w.high) {
-		d.fault(high, fault.Text(w.high), "> "+"min_"+f.unit+" = "+fault.Text(w.low))
+		d.fault(high, fault.Text(w.high), "> "+lowName+" = "+fault.Text(w.low))
 	}
 	if v.Observable == InvariantMass || v.Observable == MissingMass {
 		w.squared = true
@@ -181,6 +183,26 @@ func (d *drafter) incoming(at string, f form, v *Window) {
 	}
 	if v.Observable == TimeDifference && (source == nil || source.Tagged == nil) {
 		d.fault(at, "no tagged beam", "a hypothesis with a tagged beam")
+	}
+}
+
+// decaying checks what the windows on a displaced decay and on the fit need.
+func (d *drafter) decaying(at string, v *Window) {
+	switch v.Observable {
+	case FlightDistance, Pointing:
+		if d.reaction == nil || len(v.Products) != 1 {
+			return
+		}
+		if i, err := d.reaction.Product(d.table, v.Products[0]); err == nil && len(d.reaction.Products[i].Daughters) == 0 {
+			d.fault(at+".product", v.Products[0], "a product that decays in the reaction").Because("does not decay")
+		}
+	case FitProbability:
+		if d.from.Fit == nil {
+			d.fault(at, "no fit", "a hypothesis with a fit")
+		} else if d.out.fit != nil && d.out.fit.problem.DegreesOfFreedom() == 0 {
+			d.fault(at, "0 degrees of freedom", "a fit with at least 1 degree of freedom")
+		}
+	default:
 	}
 }
 

@@ -39,6 +39,9 @@
 // The block must have passed event.Block.Validate. The caller sets the digest of
 // the output.
 //
+// A block must have the columns that the fits of the selection need, which
+// Program.Accepts tells. Explain lays the verdict on one event open.
+//
 // # What is judged
 //
 // An assignment gives each product that is seen an object of its own, of the class
@@ -60,7 +63,10 @@
 //
 // Assignments are tried in the order of their object indices, and windows are
 // evaluated as soon as every product they need has its object, so that an
-// assignment that fails early is never completed. The work budget counts what was
-// tried: complete assignments, once per beam candidate, and incomplete ones that
-// ended early.
+// assignment that fails early is never completed. The fit comes last. The work budget
+// counts what was tried: complete assignments, once per beam candidate, and incomplete
+// ones that ended early.
+//
+// A hypothesis with a fit accepts no assignment whose fit does not converge, and ranks
+// by the probability of the fit unless it says otherwise.
 package selection

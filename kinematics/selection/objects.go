@@ -97,18 +97,24 @@ func (o *objects) load(block *event.Block, i int) {
 // motion is what the objects of an event are under one kind of mass.
 type motion struct {
 	ready bool
-	// energy and square, the signed mass squared, of each object.
-	energy, square [maxObjects]float64
+	// merged says that the objects are clusters of merged photons.
+	merged bool
+	// energy and square, the signed mass squared, of each object, and scale, what the
+	// measured momentum is to be multiplied with.
+	energy, square, scale [maxObjects]float64
 }
 
 // load sets the motion of the objects of event i that have a whole momentum.
 func (m *motion) load(k kind, o *objects, block *event.Block, i int) {
-	m.ready = true
+	m.ready, m.merged = true, k.merged
 	first, _ := block.Objects(i)
 	for j := range o.count {
-		m.energy[j], m.square[j] = math.NaN(), math.NaN()
+		m.energy[j], m.square[j], m.scale[j] = math.NaN(), math.NaN(), 1
 		switch {
 		case !o.full.has(j):
+		case k.merged:
+			m.energy[j], m.square[j] = o.length[j], float64(k.mass*k.mass)
+			m.scale[j] = mergedScale(o.length[j], k.mass)
 		case k.fromEvent:
 			m.fromEvent(o, block, first+j, j)
 		case k.mass == 0:
@@ -118,6 +124,15 @@ func (m *motion) load(k kind, o *objects, block *event.Block, i int) {
 			m.energy[j] = math.Sqrt(float64(o.length[j]*o.length[j]) + m.square[j])
 		}
 	}
+}
+
+// mergedScale returns the momentum over the energy of what leaves merged photons,
+//
+//	p/E = sqrt((E-m)(E+m))/E
+//
+// NaN below the mass.
+func mergedScale(energy, mass float64) float64 {
+	return math.Sqrt((energy-mass)*(energy+mass)) / energy
 }
 
 // fromEvent sets the motion of an object by its mass or energy column.

@@ -45,6 +45,12 @@ func (w *Worker) value(v *window) float64 {
 		if w.block.Vertex != nil {
 			return w.block.Vertex.Z[w.index]
 		}
+	case FlightDistance:
+		return w.flight(v).Norm()
+	case Pointing:
+		return angle(w.add(v.slots).P, w.flight(v))
+	case FitProbability:
+		return w.fit.Probability
 	case observableCount:
 	}
 	return math.NaN()
@@ -76,10 +82,12 @@ func (w *Worker) square(v *window) float64 {
 // four returns the four-momentum of a slot that is measured in full.
 func (w *Worker) four(slot uint8) momentum.Four {
 	object := w.assigned[slot]
-	return momentum.Four{
-		P: w.objects.momentum[object],
-		E: w.motions[w.hypothesis.slots[slot].kind].energy[object],
+	m := &w.motions[w.hypothesis.slots[slot].kind]
+	p := w.objects.momentum[object]
+	if m.merged {
+		p = p.Scale(m.scale[object])
 	}
+	return momentum.Four{P: p, E: m.energy[object]}
 }
 
 // add returns the sum of the four-momenta of slots.
@@ -188,6 +196,48 @@ func (w *Worker) transferPrime(v *window) float64 {
 		return 2 * a.Cross(b).Square() / (lengths + dot)
 	}
 	return 2 * (lengths - dot)
+}
+
+// flight returns the way from the event vertex to the vertex group of the objects of the
+// slots: 0 for the event vertex itself, NaN where they belong to different groups.
+func (w *Worker) flight(v *window) momentum.Three {
+	group, same := w.group(v)
+	switch {
+	case !same:
+		return nowhere()
+	case group < 0:
+		return momentum.Three{}
+	}
+	p := &w.block.Groups.Position
+	return momentum.Three{X: p.X[group], Y: p.Y[group], Z: p.Z[group]}.Sub(w.vertex())
+}
+
+// group returns the row of the vertex group of the objects of the slots, -1 for the event
+// vertex, and whether it is the same for all of them.
+func (w *Worker) group(v *window) (row int, same bool) {
+	g := w.block.Groups
+	if g == nil {
+		return -1, true
+	}
+	number := g.OfObject[w.objects.first+int(w.assigned[v.slots[0]])]
+	for _, k := range v.slots[1:] {
+		if g.OfObject[w.objects.first+int(w.assigned[k])] != number {
+			return 0, false
+		}
+	}
+	if number == 0 {
+		return -1, true
+	}
+	return int(g.Offsets[w.index]) + int(number) - 1, true
+}
+
+// vertex returns the event vertex, the origin where there is none.
+func (w *Worker) vertex() momentum.Three {
+	v := w.block.Vertex
+	if v == nil {
+		return momentum.Three{}
+	}
+	return momentum.Three{X: v.X[w.index], Y: v.Y[w.index], Z: v.Z[w.index]}
 }
 
 // unusedPhotonEnergy returns the summed energy of the photons that no slot uses, in

@@ -40,7 +40,7 @@ func (d *drafter) orderDaughters(daughters []int, plain string) {
 		// by exchanges, so that any member tells it.
 		for i := k - 1; i >= 0; i-- {
 			a := daughters[i]
-			if d.identical(a, b) && d.text(d.exchange(a, b)) == plain {
+			if d.identical(a, b) && d.text(d.exchange(a, b)) == plain && d.sameFit(a, b) {
 				d.out.slots[slots[0]].after = d.slotsOf(a)[0]
 				break
 			}
@@ -52,7 +52,7 @@ func (d *drafter) orderDaughters(daughters []int, plain string) {
 func (d *drafter) identical(a, b int) bool {
 	p, q := &d.reaction.Products[a], &d.reaction.Products[b]
 	return p.Particle.Number == q.Particle.Number && d.seen[a] == d.seen[b] &&
-		d.massFromEvent[a] == d.massFromEvent[b] &&
+		d.massFromEvent[a] == d.massFromEvent[b] && d.merged[a] == d.merged[b] &&
 		slices.EqualFunc(p.Daughters, q.Daughters, d.identical)
 }
 
@@ -92,6 +92,23 @@ func (d *drafter) leads(k int) bool {
 		}
 	}
 	return true
+}
+
+// sameFit reports whether the fit stays the same when two identical products are
+// exchanged with all that they decay to.
+func (d *drafter) sameFit(a, b int) bool {
+	if d.out.fit == nil {
+		return true
+	}
+	exchanged := make([]int, len(d.reaction.Products))
+	for k := range exchanged {
+		exchanged[k] = k
+	}
+	first, second := d.leaves(a), d.leaves(b)
+	for k := range first {
+		exchanged[first[k]], exchanged[second[k]] = second[k], first[k]
+	}
+	return d.out.fit.text(nil) == d.out.fit.text(exchanged)
 }
 
 // text renders the condition and the ranking with the slots renamed, nil for as they

@@ -113,12 +113,19 @@ func (t *table) load(o *objects, a, b *motion, same bool) {
 				continue
 			}
 			product := o.apart[o.pair(low, high)]
+			length := o.length[i]
+			lengths := float64(length * o.length[j])
+			if a.merged || b.merged {
+				// A cluster of merged photons measures the energy, not the momentum.
+				length *= a.scale[i]
+				lengths = float64(length * (o.length[j] * b.scale[j]))
+				product = float64(product * (a.scale[i] * b.scale[j]))
+			}
 			if a.square[i] != 0 || b.square[j] != 0 {
-				lengths := float64(o.length[i] * o.length[j])
 				energies := float64(a.energy[i] * b.energy[j])
 				if sum := energies + lengths; sum > 0 {
 					first := float64(a.square[i] * float64(b.energy[j]*b.energy[j]))
-					second := float64(b.square[j] * float64(o.length[i]*o.length[i]))
+					second := float64(b.square[j] * float64(length*length))
 					product += (first + second) / sum
 				}
 			}

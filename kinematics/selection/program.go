@@ -16,6 +16,8 @@ type Program struct {
 	signatures []signature
 	tables     []kindPair
 	outlines   []Outline
+	// fits and uncertain say that a hypothesis has a fit, or reports uncertainties.
+	fits, uncertain bool
 }
 
 // Outline is how one hypothesis was understood.
@@ -29,16 +31,23 @@ type Outline struct {
 	// Observables are the labels of the recorded observables: the meaning of an
 	// entry's observables.
 	Observables []string
+	// DegreesOfFreedom are those of the fit, NoFit without one.
+	DegreesOfFreedom int
 }
+
+// NoFit stands for the degrees of freedom of a hypothesis without a fit.
+const NoFit = -1
 
 // Outlines returns how the hypotheses were understood, in order. The caller must
 // not change them.
 func (p *Program) Outlines() []Outline { return p.outlines }
 
-// kind is where the mass of a product comes from: the table or the event.
+// kind is where the mass of a product comes from, the table or the event, and whether
+// what is measured of it is the energy of merged photons and not the momentum.
 type kind struct {
 	mass      float64
 	fromEvent bool
+	merged    bool
 }
 
 // kindPair is a pair of kinds, first <= second.
@@ -53,6 +62,8 @@ type signature struct {
 	full bool
 	// kind is the mass that the object must be able to have.
 	kind uint16
+	// minEnergy is the least energy of the object, 0 for any.
+	minEnergy float64
 }
 
 // hypothesis is a compiled hypothesis. A slot is a product that an object stands
@@ -77,13 +88,23 @@ type hypothesis struct {
 
 	// The condition is a conjunction. event holds its parts that need the event
 	// alone, candidate those that need the beam candidate besides, steps[k] those
-	// that need no slot above k, final those that need both slots and candidate.
+	// that need no slot above k, final those that need both slots and candidate, fitted
+	// those that need the fit.
 	event, candidate []check
 	steps            [][]check
-	final            []check
+	final, fitted    []check
 
 	ranking []distance
-	record  []window
+	// byFit says that the fit probability ranks.
+	byFit  bool
+	record []window
+	// uncertain says that the uncertainties of the recorded observables are reported.
+	uncertain bool
+	// fit is the constrained fit, nil for none.
+	fit *fitPlan
+	// shown are all windows of the condition and all recorded observables, as an
+	// explanation shows them.
+	shown []shownWindow
 
 	prescale uint64
 	salt     uint64
@@ -98,6 +119,9 @@ type slot struct {
 	product int
 	kind    uint16
 	full    bool
+	// minEnergy is the least energy of the photon cluster that stands for the product,
+	// 0 for a product that is seen as itself.
+	minEnergy float64
 	// after is a slot that must have a lower object, or -1: the canonical order of
 	// identical products.
 	after int

@@ -24,8 +24,13 @@ const (
 	// entryBytes is an entry without its assignment and observables: hypothesis, beam
 	// row, weight, status, tried and the ends of its assignment and observables.
 	entryBytes = 2 + 2 + 8 + 1 + 4 + 4 + 4
-	// entryColumns is the number of columns of the entries.
-	entryColumns = 10
+	// fitBytes is the fit of an entry: status, chi-square, degrees of freedom,
+	// probability and steps.
+	fitBytes = 1 + 8 + 2 + 8 + 2
+	// entryColumns is the number of columns of the entries with their uncertainties,
+	// and fitColumns that of the fits with the message around them.
+	entryColumns = 11
+	fitColumns   = 6
 )
 
 // LargestReplyBytes returns a bound on the encoded size of the verdicts on one block
@@ -43,10 +48,16 @@ func (p *Program) LargestReplyBytes(l Limits, detail Detail) int64 {
 	if detail != AcceptedEntries && detail != AllEntries {
 		return size
 	}
-	size += wrapBytes*(1+entryColumns) + 4*(n+1) + 2*4
+	size += wrapBytes*(1+entryColumns+fitColumns) + 4*(n+1) + 2*4
 	for i := range p.hypotheses {
 		h := &p.hypotheses[i]
 		bytes := int64(entryBytes + 2*h.products + 8*len(h.record))
+		if p.uncertain {
+			bytes += int64(8 * len(h.record))
+		}
+		if p.fits {
+			bytes += fitBytes
+		}
 		size += h.mostEntries(l) * bytes
 	}
 	return size

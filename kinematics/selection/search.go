@@ -3,6 +3,7 @@ package selection
 import (
 	"math"
 
+	"example.org/kinegate/kinematics/constraint"
 	"example.org/kinegate/kinematics/event"
 )
 
@@ -16,6 +17,10 @@ type search struct {
 	possible bool
 	// tried counts complete assignments and incomplete ones that a check ended.
 	tried int32
+	// witness, unless it is nil, is told of every assignment that is tried: the candidate,
+	// nil where a window ended it before, the number of slots that have objects, whether
+	// it passes and its rank.
+	witness func(c *candidate, placed int, passed bool, rank float64)
 	// exhausted says that the budget ended the search.
 	exhausted bool
 	// found, rank and objects are the best possible assignment.
@@ -28,7 +33,7 @@ type search struct {
 // if the work budget ended before all was tried.
 func (w *Worker) test(h int, entries *event.Entries) bool {
 	hypothesis := &w.program.hypotheses[h]
-	w.hypothesis = hypothesis
+	w.hypothesis, w.number = hypothesis, h
 	w.used = 0
 	w.search = search{}
 	if !w.findCandidates() || !w.allowExtra() || !w.fits() {
@@ -41,8 +46,8 @@ func (w *Worker) test(h int, entries *event.Entries) bool {
 	}
 	finished := !w.search.exhausted
 	for i := range w.candidates {
-		if c := &w.candidates[i]; c.accepted && !(w.rank[h] <= c.rank) {
-			w.rank[h] = c.rank
+		if c := &w.candidates[i]; c.accepted && !(w.rank[h] <= c.standing(hypothesis)) {
+			w.rank[h] = c.standing(hypothesis)
 		}
 	}
 	if entries != nil {
@@ -157,6 +162,7 @@ func (w *Worker) place(k int) bool {
 		} else {
 			s.tried++
 			w.left--
+			s.tell(nil, k+1, false, 0)
 		}
 		w.used &^= 1 << object
 		if !more {
@@ -191,7 +197,7 @@ func (w *Worker) complete() bool {
 		return len(h.ranking) > 0
 	}
 	s.tried++
-	waiting := len(h.ranking) > 0
+	waiting := h.ranked()
 	for i := range w.candidates {
 		c := &w.candidates[i]
 		if !c.open {
@@ -202,17 +208,76 @@ func (w *Worker) complete() bool {
 			return false
 		}
 		w.left--
-		if c.accepted && !(rank < c.rank) {
+		if c.accepted && !h.byFit && !(rank < c.rank) && s.witness == nil {
 			continue
 		}
 		w.enter(c)
-		if w.all(h.final) {
-			c.accepted, c.rank, c.objects = true, rank, w.assigned
+		if h.fit != nil && w.interrupted() {
+			s.exhausted = true
+			return false
 		}
+		w.settle(c, rank)
 		waiting = waiting || !c.accepted
 	}
 	return waiting
 }
+
+// settle accepts the assignment for a candidate if its windows and its fit let it, and it
+// ranks before what was accepted. Within a hypothesis the larger probability is the
+// smaller chi-square, which orders where the probability is too small for a number.
+func (w *Worker) settle(c *candidate, rank float64) {
+	h, s := w.hypothesis, &w.search
+	if !w.all(h.final) {
+		s.tell(c, len(h.slots), false, math.Inf(1))
+		return
+	}
+	if h.fit != nil {
+		w.makeFit(c)
+		if w.fit.Status != constraint.Converged || !w.all(h.fitted) {
+			c.miss(&w.fit, &w.assigned)
+			s.tell(c, len(h.slots), false, w.fit.ChiSquare)
+			return
+		}
+		if h.byFit {
+			rank = w.fit.ChiSquare
+		}
+	}
+	s.tell(c, len(h.slots), true, rank)
+	if !c.accepted || rank < c.rank {
+		c.accepted, c.rank, c.objects, c.fit = true, rank, w.assigned, w.fit
+	}
+}
+
+// tell tells the witness, if there is one.
+func (s *search) tell(c *candidate, placed int, passed bool, rank float64) {
+	if s.witness != nil {
+		s.witness(c, placed, passed, rank)
+	}
+}
+
+// miss keeps the best of the assignments that were fitted and did not pass: one whose
+// fit converged before others, then the smallest chi-square.
+func (c *candidate) miss(fit *constraint.Result, objects *[MaxProducts]uint8) {
+	better := !c.tried
+	if c.tried && fit.Status == constraint.Converged {
+		better = c.failed.Status != constraint.Converged || fit.ChiSquare < c.failed.ChiSquare
+	}
+	if better {
+		c.tried, c.nearest, c.failed = true, *objects, *fit
+	}
+}
+
+// standing returns the rank by which an accepted candidate compares with other
+// hypotheses.
+func (c *candidate) standing(h *hypothesis) float64 {
+	if h.byFit {
+		return -c.fit.Probability
+	}
+	return c.rank
+}
+
+// ranked reports whether every assignment must be tried to find the best.
+func (h *hypothesis) ranked() bool { return len(h.ranking) > 0 || h.byFit }
 
 // distance returns the rank of the assignment: the sum of the squared distances, 0
 // without a ranking and +Inf where a mass cannot be computed.
@@ -238,17 +303,30 @@ func (w *Worker) report(h int, finished bool, entries *event.Entries) {
 		row := event.Entry{
 			Hypothesis: int16(h), BeamRow: int16(c.row), //nolint:gosec // at most MaxHypotheses, MaxCandidates
 			Weight: c.weight, Status: event.Accepted, Tried: tried,
-			ChiSquare: math.NaN(), Probability: math.NaN(),
 		}
-		w.assigned = c.objects
+		w.enter(c)
+		w.assigned, w.fit = c.objects, c.fit
 		if !c.accepted {
-			if w.detail != AllEntries || !finished || !w.lookForPossible(&possible) {
+			if w.detail != AllEntries || !finished {
+				continue
+			}
+			switch {
+			case c.tried:
+				w.assigned, w.fit = c.nearest, c.failed
+			case w.lookForPossible(&possible):
+				w.enter(c)
+				if w.assigned = w.search.objects; w.hypothesis.fit != nil {
+					w.makeFit(c)
+				}
+			default:
 				continue
 			}
 			row.Status = event.Rejected
-			w.assigned = w.search.objects
+			if w.hypothesis.fit != nil && w.fit.Status != constraint.Converged {
+				row.Status = event.FitFailed
+			}
 		}
-		w.enter(c)
+		row.Fit = w.fitOfEntry()
 		w.describe(&row)
 		entries.Append(row)
 	}
@@ -283,9 +361,14 @@ func (w *Worker) describe(row *event.Entry) {
 		w.assignment[h.slots[k].product] = int16(object)
 		w.used |= 1 << object
 	}
-	w.values = w.values[:0]
+	w.values, w.spreads = w.values[:0], w.spreads[:0]
 	for i := range h.record {
 		w.values = append(w.values, w.value(&h.record[i]))
+		spread := math.NaN()
+		if h.uncertain {
+			spread = w.uncertainty(&h.record[i])
+		}
+		w.spreads = append(w.spreads, spread)
 	}
-	row.Assignment, row.Observables = w.assignment, w.values
+	row.Assignment, row.Observables, row.Uncertainties = w.assignment, w.values, w.spreads
 }

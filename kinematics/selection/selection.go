@@ -60,10 +60,15 @@ type Hypothesis struct {
 	ExtraObjects *ExtraObjects
 	// Condition must hold; absent means that an assignment is enough.
 	Condition *Condition
-	// Ranking orders competing assignments; absent means in index order.
+	// Fit is the constrained fit; absent for none.
+	Fit *Fit
+	// Ranking orders competing assignments; absent means by fit probability where
+	// there is a fit with a degree of freedom, and else in index order.
 	Ranking *Ranking
 	// Record lists observables to report with each entry, without limits.
 	Record []Window
+	// RecordUncertainties reports their standard deviations too.
+	RecordUncertainties bool
 	// Prescale keeps one of this many accepted events, chosen by event id; 0 and 1
 	// keep all.
 	Prescale int64
@@ -95,7 +100,7 @@ const (
 type Group struct {
 	// Name is unique among the groups and written as the selection's.
 	Name string
-	// Hypotheses are the names of two or more, all with a ranking of one kind.
+	// Hypotheses are the names of two or more, all ranked in the same way.
 	Hypotheses []string
 }
 
@@ -109,6 +114,17 @@ type ProductMeasurement struct {
 	// of the particle table. In an event without such a column no object can stand
 	// for the product.
 	MassFromEvent bool
+	// Merged says that one photon cluster stands for the product; absent for a
+	// product that is seen as itself.
+	Merged *MergedPhotons
+}
+
+// MergedPhotons is a photon cluster that stands for a neutral product whose photons
+// are too close to be told apart. Energy and direction are those of the cluster, the
+// mass that of the product.
+type MergedPhotons struct {
+	// MinEnergyGeV is the least energy of the cluster, above the mass of the product.
+	MinEnergyGeV float64
 }
 
 // Measurement is how much of a product is seen.
@@ -184,10 +200,12 @@ type Condition struct {
 }
 
 // Ranking orders the assignments of one hypothesis; the first is its best. Ties go
-// to the lowest tuple of object indices.
+// to the lowest tuple of object indices. Exactly one of its members must be set.
 type Ranking struct {
 	// ClosestMasses are one to MaxReferences distances, added in quadrature.
 	ClosestMasses []MassReference
+	// FitProbability ranks the largest fit probability first.
+	FitProbability bool
 }
 
 // MassReference is the distance of an invariant mass from a reference.

@@ -40,6 +40,13 @@ const (
 	UnusedPhotonEnergy
 	// VertexZ is z of the event vertex.
 	VertexZ
+	// FlightDistance is the distance from the event vertex to the vertex group of the
+	// objects that the one product of Products decays to.
+	FlightDistance
+	// Pointing is the angle between the momentum of that product and its flight.
+	Pointing
+	// FitProbability is the probability of a chi-square above that of the fit.
+	FitProbability
 	observableCount
 )
 
@@ -141,9 +148,23 @@ func (o Observable) form() (form, bool) {
 		return form{name: "unused_photon_energy", unit: gev}, true
 	case VertexZ:
 		return form{name: "vertex_z", unit: "m"}, true
+	case FlightDistance:
+		return form{name: "flight_distance", unit: "m", products: one, single: true}, true
+	case Pointing:
+		return form{name: "pointing", unit: rad, products: one, single: true}, true
+	case FitProbability:
+		return form{name: "fit_probability"}, true
 	case observableCount:
 	}
 	return form{}, false
+}
+
+// limits are the names of the limits in the contract.
+func (f *form) limits() (low, high string) {
+	if f.unit == "" {
+		return "min", "max"
+	}
+	return "min_" + f.unit, "max_" + f.unit
 }
 
 // String is the name of the observable in the contract.

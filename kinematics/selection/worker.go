@@ -3,6 +3,7 @@ package selection
 import (
 	"math"
 
+	"example.org/kinegate/kinematics/constraint"
 	"example.org/kinegate/kinematics/event"
 	"example.org/kinegate/kinematics/momentum"
 )
@@ -47,17 +48,23 @@ type Worker struct {
 	// The hypothesis being tested: its beam candidates, the initial state being
 	// tried, and the objects of the slots.
 	hypothesis *hypothesis
+	number     int
 	candidates []candidate
 	incoming   *incoming
 	beamRow    int
 	assigned   [MaxProducts]uint8
 	used       set
 	search     search
+	// fitters are those of the hypotheses, nil for one without a fit; fit is the result
+	// for the assignment being looked at.
+	fitters []*constraint.Fitter
+	fit     constraint.Result
 
 	// rank is the best rank of each hypothesis that accepts, NaN otherwise.
 	rank       []float64
 	fours      [MaxProducts + 2]momentum.Four
 	values     []float64
+	spreads    []float64
 	assignment []int16
 }
 
@@ -70,23 +77,36 @@ type candidate struct {
 	state  incoming
 	// open says that the conditions on the candidate alone hold.
 	open bool
-	// accepted says that an assignment passes; objects are those of the best one and
-	// rank is its rank.
+	// accepted says that an assignment passes; objects are those of the best one, rank is
+	// its rank and fit its fit.
 	accepted bool
 	rank     float64
 	objects  [MaxProducts]uint8
+	fit      constraint.Result
+	// tried says that an assignment was fitted and did not pass; nearest are the objects of
+	// the best such one and failed its fit.
+	tried   bool
+	nearest [MaxProducts]uint8
+	failed  constraint.Result
 }
 
 // NewWorker returns a worker that reports entries as detail says.
 func (p *Program) NewWorker(detail Detail) *Worker {
-	return &Worker{
+	w := &Worker{
 		program:  p,
 		detail:   detail,
 		motions:  make([]motion, len(p.kinds)),
 		tables:   make([]table, len(p.tables)),
 		matching: make([]set, len(p.signatures)),
+		fitters:  make([]*constraint.Fitter, len(p.hypotheses)),
 		rank:     make([]float64, len(p.hypotheses)),
 	}
+	for i := range p.hypotheses {
+		if f := p.hypotheses[i].fit; f != nil {
+			w.fitters[i] = f.problem.NewFitter()
+		}
+	}
+	return w
 }
 
 // Reset empties out, and keeps its memory, for verdicts of this worker's program.
@@ -108,7 +128,7 @@ func (w *Worker) Reset(out *event.VerdictBlock) {
 	if out.Entries == nil {
 		out.Entries = &event.Entries{}
 	}
-	out.Entries.Reset()
+	out.Entries.Reset(w.program.fits, w.program.uncertain)
 }
 
 // resized returns s with n elements, keeping those it has.
@@ -291,7 +311,8 @@ func (w *Worker) match() {
 			eligible = o.full
 		}
 		for j := range o.count {
-			if eligible.has(j) && uint8(o.class[j]) == s.class && (o.species[j] == 0 || o.species[j]&s.species != 0) {
+			fits := eligible.has(j) && uint8(o.class[j]) == s.class && (o.species[j] == 0 || o.species[j]&s.species != 0)
+			if fits && (s.minEnergy == 0 || o.length[j] >= s.minEnergy) {
 				w.matching[k] |= 1 << j
 			}
 		}

@@ -9,6 +9,7 @@ import (
 
 	"google.golang.org/protobuf/proto"
 
+	"example.org/kinegate/kinematics/event"
 	"example.org/kinegate/kinematics/fault"
 	"example.org/kinegate/kinematics/particle"
 	"example.org/kinegate/kinematics/selection"
@@ -45,11 +46,23 @@ func compile(m *kinegatev1.Selection, table *particle.Table) (*compiledSelection
 	}
 	c := &compiledSelection{message: m, program: program, digest: digest}
 	for _, o := range program.Outlines() {
-		c.outline = append(c.outline, &kinegatev1.HypothesisOutline{
+		outline := &kinegatev1.HypothesisOutline{
 			Name: o.Name, Reaction: o.Reaction, Products: o.Products, Observables: o.Observables,
-		})
+		}
+		if o.DegreesOfFreedom != selection.NoFit {
+			outline.DegreesOfFreedom = new(int32(o.DegreesOfFreedom)) //nolint:gosec // below a hundred
+		}
+		c.outline = append(c.outline, outline)
 	}
 	return c, nil
+}
+
+// accepts refuses a block that lacks a column which a fit of the selection needs.
+func (c *compiledSelection) accepts(block *event.Block) error {
+	if err := c.program.Accepts(block); err != nil {
+		return Because(BlockInvalid, err)
+	}
+	return nil
 }
 
 // largestReply is the bound of an encoded verdict block on a block within the
@@ -79,6 +92,9 @@ func readFile(text string, m proto.Message, compile func() error) error {
 	var faults fault.List
 	for _, f := range textFaults {
 		faults = append(faults, fault.New(fault.Invalid, f.Field, "", "").Because(f.Message).At(f.Line, f.Column))
+	}
+	if positions == nil {
+		return faults.Err() // all that it would say is missing
 	}
 	err := compile()
 	found := faultsOf(err)

@@ -89,6 +89,9 @@ var workspaces = sync.Pool{New: func() any { return new(workspace) }}
 func (j *judging) block(ctx context.Context, m *kinegatev1.EventBlock, bytes int64, deadline time.Time, w *workspace) (*kinegatev1.VerdictBlock, error) {
 	j.catchUp()
 	block, err := convertBlock(m, bytes, j.limits, w)
+	if err == nil {
+		err = j.compiled.accepts(block)
+	}
 	if err != nil {
 		return rejection(m.GetSequence(), j.compiled.digest, err), nil
 	}

@@ -78,6 +78,9 @@ func (s *selectionService) JudgeBlock(ctx context.Context, request *kinegatev1.J
 	if err != nil {
 		return nil, err
 	}
+	if err := j.compiled.accepts(block); err != nil {
+		return nil, In("block", err)
+	}
 	verdict, err := j.events(ctx, request.GetBlock().GetSequence(), block, time.Time{}, w)
 	if err != nil {
 		return nil, err

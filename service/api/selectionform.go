@@ -45,6 +45,8 @@ func (f *former) hypothesis(at string, m *kinegatev1.Hypothesis) selection.Hypot
 		AlsoConjugate: m.GetAlsoConjugate(),
 		Prescale:      m.GetPrescaleCount(),
 		Role:          enumForm[selection.Role](f, at+".role", m.GetRole()),
+
+		RecordUncertainties: m.GetRecordUncertainties(),
 	}
 	if r := m.GetStructuredReaction(); r != nil {
 		h.Structured = &selection.Reaction{
@@ -56,6 +58,7 @@ func (f *former) hypothesis(at string, m *kinegatev1.Hypothesis) selection.Hypot
 			Product:       p.GetProduct(),
 			Measurement:   enumForm[selection.Measurement](f, index(at+".measurements", i)+".measurement", p.GetMeasurement()),
 			MassFromEvent: p.GetMassFromEvent(),
+			Merged:        mergedForm(p.GetMergedPhotons()),
 		})
 	}
 	h.Beam = f.beam(at+".beam", m.GetBeam())
@@ -64,11 +67,19 @@ func (f *former) hypothesis(at string, m *kinegatev1.Hypothesis) selection.Hypot
 		condition := f.condition(at+".condition", c)
 		h.Condition = &condition
 	}
+	h.Fit = f.fit(at+".fit", m.GetFit())
 	h.Ranking = f.ranking(at+".ranking", m.GetRanking())
 	for i, w := range m.GetRecord() {
 		h.Record = append(h.Record, f.window(index(at+".record", i), w))
 	}
 	return h
+}
+
+func mergedForm(m *kinegatev1.MergedPhotons) *selection.MergedPhotons {
+	if m == nil {
+		return nil
+	}
+	return &selection.MergedPhotons{MinEnergyGeV: m.GetMinEnergyGev()}
 }
 
 func productForms(ms []*kinegatev1.Product) []selection.Product {
@@ -190,13 +201,16 @@ func (f *former) ranking(at string, m *kinegatev1.Ranking) *selection.Ranking {
 	if m == nil {
 		return nil
 	}
-	closest := m.GetClosestMasses()
-	if closest == nil {
-		f.need(at, "empty", "closest_masses")
+	r := &selection.Ranking{}
+	switch m.GetOrder().(type) {
+	case *kinegatev1.Ranking_ClosestMasses:
+	case *kinegatev1.Ranking_FitProbability:
+		r.FitProbability = true
+	default:
+		f.need(at, "empty", "closest_masses or fit_probability")
 		return nil
 	}
-	r := &selection.Ranking{}
-	for _, ref := range closest.GetMasses() {
+	for _, ref := range m.GetClosestMasses().GetMasses() {
 		r.ClosestMasses = append(r.ClosestMasses, selection.MassReference{
 			Products: ref.GetProducts(), MassGeV: ref.MassGev, ScaleGeV: ref.ScaleGev,
 		})

@@ -36,7 +36,7 @@ func (c *verdictColumns) block(sequence int64, digest string, v *event.VerdictBl
 }
 
 func (c *verdictColumns) entries(e *event.Entries) *kinegatev1.EntryColumns {
-	return &kinegatev1.EntryColumns{
+	m := &kinegatev1.EntryColumns{
 		Offsets:           write(c, e.Offsets, column.AppendInt32),
 		HypothesisIndices: write(c, e.Hypothesis, column.AppendInt16),
 		BeamRows:          write(c, e.BeamRow, column.AppendInt16),
@@ -48,6 +48,22 @@ func (c *verdictColumns) entries(e *event.Entries) *kinegatev1.EntryColumns {
 		ObservableOffsets: write(c, e.ObservableOffsets, column.AppendInt32),
 		Observables:       write(c, e.Observables, column.AppendFloat64),
 	}
+	if u := e.Uncertainties; u != nil {
+		m.ObservableUncertainties = write(c, u.Values, column.AppendFloat64)
+		if m.ObservableUncertainties == nil {
+			m.ObservableUncertainties = []byte{} // there, and empty
+		}
+	}
+	if f := e.Fits; f != nil {
+		m.Fits = &kinegatev1.FitColumns{
+			Statuses:         write(c, f.Status, column.AppendUint8),
+			ChiSquares:       write(c, f.ChiSquare, column.AppendFloat64),
+			DegreesOfFreedom: write(c, f.DegreesOfFreedom, column.AppendInt16),
+			Probabilities:    write(c, f.Probability, column.AppendFloat64),
+			Iterations:       write(c, f.Iterations, column.AppendInt16),
+		}
+	}
+	return m
 }
 
 // write encodes a column behind those that are in the arena already. Should the

@@ -50,6 +50,14 @@ func (f *former) window(at string, m *kinegatev1.Window) selection.Window {
 		w.Min, w.Max = x.UnusedPhotonEnergy.MinGev, x.UnusedPhotonEnergy.MaxGev
 	case *kinegatev1.Window_VertexZ:
 		w.Observable, w.Min, w.Max = selection.VertexZ, x.VertexZ.MinM, x.VertexZ.MaxM
+	case *kinegatev1.Window_FlightDistance:
+		w.Observable, w.Products = selection.FlightDistance, reference(x.FlightDistance.GetProduct())
+		w.Min, w.Max = x.FlightDistance.MinM, x.FlightDistance.MaxM
+	case *kinegatev1.Window_Pointing:
+		w.Observable, w.Products = selection.Pointing, reference(x.Pointing.GetProduct())
+		w.Min, w.Max = x.Pointing.MinRad, x.Pointing.MaxRad
+	case *kinegatev1.Window_FitProbability:
+		w.Observable, w.Min, w.Max = selection.FitProbability, x.FitProbability.Min, x.FitProbability.Max
 	default:
 		f.need(at, "empty", "one observable")
 	}

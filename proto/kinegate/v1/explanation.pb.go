@@ -123,8 +123,8 @@ type HypothesisExplanation struct {
 	Kept bool `protobuf:"varint,5,opt,name=kept,proto3" json:"kept,omitempty"`
 	// Why no assignment could be tried, in a sentence; empty where one was.
 	Obstacle string `protobuf:"bytes,6,opt,name=obstacle,proto3" json:"obstacle,omitempty"`
-	// Number of assignments tried, each once for each beam candidate, also where
-	// they were given up before they were complete or are not listed here.
+	// Number of assignments tried, listed here or not: complete ones once for each
+	// beam candidate, others once.
 	AssignmentCount int64 `protobuf:"varint,7,opt,name=assignment_count,json=assignmentCount,proto3" json:"assignment_count,omitempty"`
 	// The assignments, best first: those that pass by their rank, then the complete
 	// ones that fail, then those that a window ended before they were complete. At
@@ -232,7 +232,8 @@ func (x *HypothesisExplanation) GetDegreesOfFreedom() int32 {
 // AssignmentExplanation is one assignment with one beam candidate.
 type AssignmentExplanation struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
-	// Beam candidate within the event; -1 for none.
+	// Beam candidate within the event; -1 for none, and where a window ended the
+	// assignment before a candidate was looked at.
 	BeamRow int32 `protobuf:"varint,1,opt,name=beam_row,json=beamRow,proto3" json:"beam_row,omitempty"`
 	// Weight of the candidate's time window; 1 without one.
 	Weight float64 `protobuf:"fixed64,2,opt,name=weight,proto3" json:"weight,omitempty"`
@@ -248,8 +249,8 @@ type AssignmentExplanation struct {
 	Best bool `protobuf:"varint,6,opt,name=best,proto3" json:"best,omitempty"`
 	// Sum of squared distances of a ranking by closest masses; absent for others.
 	RankDistance *float64 `protobuf:"fixed64,7,opt,name=rank_distance,json=rankDistance,proto3,oneof" json:"rank_distance,omitempty"`
-	// The windows of the condition whose observables can be computed so far, in the
-	// order of the condition; then those that are recorded.
+	// The windows of the condition for which everything that they need is known so
+	// far, in the order of the condition; then those that are recorded.
 	Windows []*WindowExplanation `protobuf:"bytes,8,rep,name=windows,proto3" json:"windows,omitempty"`
 	// The fit; absent where the hypothesis has none and where a window failed, so
 	// that none was made.

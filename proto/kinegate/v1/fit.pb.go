@@ -516,8 +516,7 @@ type InitialEnergy_Measured struct {
 }
 
 type InitialEnergy_Unmeasured struct {
-	// The energy is not measured: one unmeasured parameter more. The fit starts
-	// at the energy of the beam source.
+	// The energy is not measured: one unmeasured parameter more.
 	Unmeasured *UnmeasuredEnergy `protobuf:"bytes,3,opt,name=unmeasured,proto3,oneof"`
 }
 

@@ -110,7 +110,9 @@ const (
 	EntryStatus_ENTRY_STATUS_UNSPECIFIED EntryStatus = 0
 	// The assignment passes every condition.
 	EntryStatus_ENTRY_STATUS_ACCEPTED EntryStatus = 1
-	// No assignment passes; the entry describes the best one that was possible.
+	// No assignment passes; the entry describes the best one that was possible: of
+	// those that were fitted the one with the largest probability, else the one that
+	// ranks first.
 	EntryStatus_ENTRY_STATUS_REJECTED EntryStatus = 2
 	// No assignment passes, and the fit of the one described, the best that was
 	// possible, did not converge: the status of the fit says how it ended.
