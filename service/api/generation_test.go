@@ -88,7 +88,7 @@ func smallDetector() *kinegatev1.Detector {
 				From: kinegatev1.Species_SPECIES_PROTON, To: kinegatev1.Species_SPECIES_PION, Probability: 0.1,
 			}},
 		},
-		Tagger: &kinegatev1.Tagger{SigmaGev: 0.005, TimeSigmaNs: 1},
+		Tagger:    &kinegatev1.Tagger{SigmaGev: 0.005, TimeSigmaNs: 1},
 		Vertex:    &kinegatev1.VertexDetector{SigmaXM: 1e-4, SigmaYM: 1e-4, SigmaZM: 1e-3},
 		Displaced: &kinegatev1.DisplacedVertexDetector{DistanceMinM: 0.002, SigmaXM: 5e-4, SigmaYM: 5e-4, SigmaZM: 1e-3, Efficiency: new(0.95)},
 	}

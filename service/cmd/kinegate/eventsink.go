@@ -20,7 +20,10 @@ import (
 // eventSink keeps simulated events in a file.
 type eventSink interface {
 	add(header *kinegatev1.GenerationHeader, block *kinegatev1.GeneratedBlock, events []simulated) error
+	// finish writes what is left.
 	finish() error
+	// abandon removes what is only kept for the end; after finish too.
+	abandon()
 }
 
 // newEventSink opens a file by its extension; nil for no name.
@@ -42,10 +45,15 @@ func newEventSink(name string) (eventSink, error) {
 	if err != nil {
 		return nil, badInput("--out: %w", err)
 	}
+	return openSink(extension, file, table)
+}
+
+func openSink(extension string, file *os.File, table *particle.Table) (eventSink, error) {
 	f := outFile{file: file, buffer: bufio.NewWriter(file), charges: chargesOf(table)}
 	switch extension {
 	case ".csv":
-		return &csvSink{outFile: f}, nil
+		spool, err := eventfile.NewSpool()
+		return &csvSink{outFile: f, spool: spool}, err
 	case ".kgb":
 		return &blockSink{outFile: f}, nil
 	}
@@ -58,6 +66,8 @@ type outFile struct {
 	buffer  *bufio.Writer
 	charges map[int64]int
 }
+
+func (f *outFile) abandon() {}
 
 func (f *outFile) close() error { return errors.Join(f.buffer.Flush(), f.file.Close()) }
 
@@ -107,12 +117,13 @@ func isNeutrino(number int64) bool {
 	return false
 }
 
-// csvSink keeps events for the end: the number of columns depends on all of them.
+// csvSink keeps events in a temporary file for the end: the number of columns depends on
+// all of them.
 type csvSink struct {
 	outFile
 
 	coordinates kinegate.Coordinates
-	events      []eventfile.Event
+	spool       *eventfile.Spool
 	digest      string
 }
 
@@ -125,17 +136,21 @@ func (s *csvSink) add(header *kinegatev1.GenerationHeader, _ *kinegatev1.Generat
 			s.coordinates = kinegate.MomentumAngles
 		}
 		objects, beam := s.objects(e)
-		s.events = append(s.events, eventfile.Event{ID: e.id, Objects: objects, Beam: beam, Other: map[string]string{
+		if err := s.spool.Add(&eventfile.Event{ID: e.id, Objects: objects, Beam: beam, Other: map[string]string{
 			"channel": header.GetChannels()[e.channel].GetName(), "weight": strconv.FormatFloat(e.weight, 'g', -1, 64),
-		}})
+		}}); err != nil {
+			return err
+		}
 	}
 	return nil
 }
 
 func (s *csvSink) finish() error {
 	comment := "Simulated events, sample " + s.digest + "."
-	return errors.Join(eventfile.Write(s.buffer, comment, s.coordinates, s.events), s.close())
+	return errors.Join(s.spool.Write(s.buffer, comment, s.coordinates), s.close())
 }
+
+func (s *csvSink) abandon() { _ = s.spool.Close() }
 
 // blockSink writes the event blocks themselves, each behind its length as a varint.
 type blockSink struct{ outFile }

@@ -4,13 +4,16 @@ import (
 	"errors"
 	"io"
 	"os"
+	"path/filepath"
+	"strings"
 	"sync/atomic"
 
 	kinegate "example.org/kinegate/clients/go"
 	"example.org/kinegate/service/cmd/kinegate/internal/eventfile"
 )
 
-// eventSource reads event files into blocks.
+// eventSource reads event files into blocks: lines of text are put together into blocks,
+// files of blocks are read as they are.
 type eventSource struct {
 	files    []string
 	perBlock int
@@ -19,7 +22,8 @@ type eventSource struct {
 
 	file   *os.File
 	reader *eventfile.Reader
-	held   *sourced // read, but of the next block
+	blocks *eventfile.BlockReader // in place of reader
+	held   *sourced               // read, but of the next block
 }
 
 // sourced is an event with the coordinate set of its file.
@@ -45,6 +49,17 @@ func (s *eventSource) size() int64 {
 // next returns the next block, io.EOF after the last. All events of a block share a
 // run and a coordinate set.
 func (s *eventSource) next() (*batch[eventfile.Event], error) {
+	for s.held == nil && s.reader == nil {
+		if s.blocks == nil {
+			if err := s.openNext(); err != nil {
+				return nil, err
+			}
+			continue
+		}
+		if b, err := s.nextBlock(); !errors.Is(err, io.EOF) {
+			return b, err
+		}
+	}
 	first, err := s.event()
 	if err != nil {
 		return nil, err
@@ -72,7 +87,26 @@ func (s *eventSource) next() (*batch[eventfile.Event], error) {
 	return b, nil
 }
 
-// event returns the next event of all files.
+// nextBlock returns the next block of a file of blocks, io.EOF after its last.
+func (s *eventSource) nextBlock() (*batch[eventfile.Event], error) {
+	block, events, err := s.blocks.Next()
+	if err != nil {
+		name := s.file.Name()
+		_ = s.file.Close() // only read
+		s.blocks = nil
+		if errors.Is(err, io.EOF) {
+			return nil, io.EOF
+		}
+		return nil, badInput("%s: %w", name, err)
+	}
+	if len(events) > s.perBlock {
+		return nil, badInput("%s: a block of %d events; --block-events allows %d", s.file.Name(), len(events), s.perBlock)
+	}
+	return &batch[eventfile.Event]{block: block, events: events}, nil
+}
+
+// event returns the next event of the files of lines, io.EOF at the first file of
+// blocks.
 func (s *eventSource) event() (sourced, error) {
 	if s.held != nil {
 		e := *s.held
@@ -80,10 +114,13 @@ func (s *eventSource) event() (sourced, error) {
 		return e, nil
 	}
 	for {
-		if s.reader == nil {
+		if s.reader == nil && s.blocks == nil {
 			if err := s.openNext(); err != nil {
 				return sourced{}, err
 			}
+		}
+		if s.blocks != nil {
+			return sourced{}, io.EOF
 		}
 		e, err := s.reader.Next()
 		if err == nil {
@@ -110,6 +147,10 @@ func (s *eventSource) openNext() error {
 		return badInput("%w", err)
 	}
 	s.file = file
+	if strings.EqualFold(filepath.Ext(name), eventfile.Extension) {
+		s.blocks = eventfile.NewBlockReader(counted{file, &s.read})
+		return nil
+	}
 	if s.reader, err = eventfile.NewReader(counted{file, &s.read}); err != nil {
 		return badInput("%s: %w", name, err)
 	}

@@ -9,6 +9,8 @@ import (
 	"google.golang.org/genproto/googleapis/rpc/errdetails"
 	"google.golang.org/grpc/codes"
 	"google.golang.org/grpc/status"
+
+	"example.org/kinegate/service/api"
 )
 
 // errNo ends a command whose answer is no and has been printed.
@@ -27,6 +29,9 @@ func explain(err error) (text string, code int) {
 	if !ok {
 		return err.Error(), exitFailed
 	}
+	if reasonOf(s) == string(api.ChannelClosed) {
+		return describeStatus(s), exitNo
+	}
 	switch s.Code() { //nolint:exhaustive // all other codes are failures of the work
 	case codes.InvalidArgument, codes.NotFound, codes.FailedPrecondition, codes.OutOfRange:
 		return describeStatus(s), exitUsage
@@ -34,6 +39,16 @@ func explain(err error) (text string, code int) {
 		return "no server answers in time: " + s.Message(), exitFailed
 	}
 	return describeStatus(s), exitFailed
+}
+
+// reasonOf is the registered reason of a status, empty for none.
+func reasonOf(s *status.Status) string {
+	for _, d := range s.Details() {
+		if info, ok := d.(*errdetails.ErrorInfo); ok {
+			return info.GetReason()
+		}
+	}
+	return ""
 }
 
 // byFlags puts the flags of the commands in place of the fields that they fill.

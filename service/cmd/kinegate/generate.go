@@ -21,8 +21,9 @@ func generateCommand(p program) *cobra.Command {
 		Short: "Make simulated events, decayed and measured, into a table or a file",
 		Long: "generate makes events of a reaction, or of a mixture of several with equal shares, and\n" +
 			"prints the first ones and a summary. Event i of a seed is the same event whatever slice it\n" +
-			"is made in. With --detector the events are measured too. Files: .csv (kinegate judge reads\n" +
-			"it), .parquet (one row an event), .kgb (event blocks, each behind its length). Without a\n" +
+			"is made in. With --detector the events are measured too. Files: .csv and .kgb, which\n" +
+			"kinegate judge reads, and .parquet (one row an event). A .kgb file holds event blocks, each\n" +
+			"behind its length, with covariances and vertices, for which .csv has no columns. Without a\n" +
 			"detector a file holds the true particles that would reach one. --request takes the full\n" +
 			"form: shares, bounds, energy and angular shapes, spectra, targets, decays.",
 		Example: `  kinegate generate "` + omegaExample + `" --beam-range "1.2 GeV:2.4 GeV" --events 10000 --seed 1
@@ -32,16 +33,14 @@ func generateCommand(p program) *cobra.Command {
 		RunE: func(c *cobra.Command, args []string) error { return g.run(c.Context(), args) },
 	}
 	g.flags(c)
-	g.initial.add(c)
+	g.sample(c)
 	f := c.Flags()
-	f.StringVar(&g.beamRange, "beam-range", "", `energies of the beam, equally likely, as "LOW:HIGH"`)
-	f.StringVar(&g.electrons, "bremsstrahlung", "", "energy of the electrons whose radiated photons the beam is, with complete screening; needs --beam-range")
 	f.Int64Var(&g.events, "events", 1000, "number of events, at least 0")
 	f.Int64Var(&g.first, "first-event", 0, "number of the first event")
 	f.Int64Var(&g.seed, "seed", 1, "seed of the events")
 	f.BoolVar(&g.weighted, "weighted", false, "events with weights, in place of unweighted ones; of one reaction only")
+	f.Float64Var(&g.bound, "bound", 0, "unweighting bound as kinegate bound measures it, above 0; of one reaction only")
 	f.StringVar(&g.detectorFile, "detector", "", "detector file (YAML); without one there is only the truth")
-	f.StringVar(&g.requestFile, "request", "", "generation file (YAML), in place of reactions and flags of the beam")
 	f.StringVar(&g.outFile, "out", "", "write the events to this file: .csv, .parquet or .kgb")
 	f.IntVar(&g.show, "show", 2, "number of events to print")
 	f.StringVar(&g.massOf, "mass", "", `products whose true invariant mass is drawn, such as "omega" or "p, pi0[1]"`)
@@ -49,7 +48,27 @@ func generateCommand(p program) *cobra.Command {
 	return c
 }
 
+// eventsPerBlock is at most what kinegate judge sends in a block by default.
+const eventsPerBlock = 1000
+
 const omegaExample = "gamma p -> p omega, omega -> pi0 gamma, pi0 -> gamma gamma"
+
+// sample adds the flags that say what is simulated.
+func (g *generateRun) sample(c *cobra.Command) {
+	g.initial.add(c)
+	f := c.Flags()
+	f.StringVar(&g.beamRange, "beam-range", "", `energies of the beam, equally likely, as "LOW:HIGH"`)
+	f.StringVar(&g.electrons, "bremsstrahlung", "", "energy of the electrons whose radiated photons the beam is, with complete screening; needs --beam-range")
+	f.StringVar(&g.requestFile, "request", "", "generation file (YAML), in place of reactions and flags of the beam")
+}
+
+// asked checks that there is something to simulate, once.
+func (g *generateRun) asked(reactions []string) error {
+	if (len(reactions) == 0) == (g.requestFile == "") {
+		return badInput("name a reaction, or a file with --request; one or the other")
+	}
+	return nil
+}
 
 // generateRun is one run of the command.
 type generateRun struct {
@@ -59,6 +78,7 @@ type generateRun struct {
 	beamRange, electrons               string
 	events, first, seed                int64
 	weighted                           bool
+	bound                              float64
 	detectorFile, requestFile, outFile string
 	show                               int
 	massOf                             string
@@ -70,8 +90,8 @@ func (g *generateRun) run(ctx context.Context, reactions []string) error {
 	if err != nil {
 		return err
 	}
-	if (len(reactions) == 0) == (g.requestFile == "") {
-		return badInput("name a reaction, or a file with --request; one or the other")
+	if err := g.asked(reactions); err != nil {
+		return err
 	}
 	client, closeClient, err := g.connect(ctx)
 	if err != nil {
@@ -86,7 +106,12 @@ func (g *generateRun) run(ctx context.Context, reactions []string) error {
 	if err != nil {
 		return err
 	}
-	request := &kinegatev1.GenerateEventsRequest{Generation: generation, FirstEvent: g.first, EventCount: g.events}
+	if sink != nil {
+		defer sink.abandon()
+	}
+	request := &kinegatev1.GenerateEventsRequest{
+		Generation: generation, FirstEvent: g.first, EventCount: g.events, BlockEventCount: eventsPerBlock,
+	}
 	s := &generated{environment: g.environment, sink: sink, show: g.show}
 	if draw || g.massOf != "" {
 		s.masses = &massSample{wanted: g.massOf}
@@ -117,6 +142,12 @@ func (g *generateRun) generation(ctx context.Context, client *kinegate.Client, r
 	} else {
 		for _, text := range reactions {
 			m.Channels = append(m.Channels, &kinegatev1.GenerationChannel{Reaction: text})
+		}
+		if g.bound != 0 {
+			if len(reactions) > 1 {
+				return nil, badInput("--bound is of one reaction; with several write a file for --request")
+			}
+			m.Channels[0].Bound = &g.bound
 		}
 		var err error
 		if m.InitialState, err = g.initialState(reactions[0]); err != nil {

@@ -6,8 +6,10 @@ import (
 	"io"
 	"os"
 	"path/filepath"
+	"runtime"
 	"strings"
 	"testing"
+	"time"
 
 	"google.golang.org/protobuf/encoding/protodelim"
 
@@ -63,7 +65,7 @@ func TestGenerate(t *testing.T) {
 		{`generate --request ` + generation + ` --detector ` + detector + ` --events 100`, exitWell, "with an object seen"},
 		{`generate --request ` + generation + ` --events 0`, exitWell, "0, from 0 on, seed 5"},
 		{`generate --request ` + generation + ` --events 10 --json`, exitWell, `"generation_digest"`},
-		{`generate "gamma p -> p eta" --beam "700 MeV"`, exitUsage, "the channel is closed"},
+		{`generate "gamma p -> p eta" --beam "700 MeV"`, exitNo, "the channel is closed"},
 		{`generate "gamma p -> p etha" --beam "1 GeV"`, exitUsage, "\n               ^"},
 		{`generate "gamma p -> p eta"`, exitUsage, "only a decay needs none"},
 		{`generate "gamma p -> p eta" --beam-range "1 GeV"`, exitUsage, "LOW:HIGH"},
@@ -148,5 +150,122 @@ func readBlocks(t *testing.T, name string) (kinegate.Coordinates, []kinegate.Mea
 			t.Fatal(err)
 		}
 		all = append(all, events...)
+	}
+}
+
+const etaSelection = `name: eta
+hypotheses:
+  - name: eta
+    reaction: "gamma p -> p eta, eta -> gamma gamma"
+    condition:
+      window:
+        invariant_mass: {products: [eta], min_gev: 0.4, max_gev: 0.7}
+    record:
+      - name: M
+        invariant_mass: {products: [eta]}
+`
+
+// TestJudgeReadsBlocks holds that the lines and the blocks of the same events get the same
+// verdicts, also one file after the other.
+func TestJudgeReadsBlocks(t *testing.T) {
+	t.Parallel()
+	folder := t.TempDir()
+	detector := write(t, "detector.yaml", detectorText)
+	lines, blocks := filepath.Join(folder, "e.csv"), filepath.Join(folder, "e.kgb")
+	for _, name := range []string{lines, blocks} {
+		if code, _, errs := command(t, "generate", "gamma p -> p eta, eta -> gamma gamma", "--beam-range", "1.2 GeV:2.4 GeV",
+			"--events", "2500", "--detector", detector, "--out", name); code != exitWell {
+			t.Fatal(errs)
+		}
+	}
+	selection := write(t, "selection.yaml", etaSelection)
+	verdicts := func(files ...string) string {
+		out := filepath.Join(folder, "verdicts.csv")
+		if code, _, errs := command(t, append([]string{"judge", "--selection", selection, "--out", out}, files...)...); code != exitWell {
+			t.Fatal(errs)
+		}
+		text, err := os.ReadFile(out)
+		if err != nil {
+			t.Fatal(err)
+		}
+		return string(text)
+	}
+	want := verdicts(lines)
+	if got := verdicts(blocks); got != want || strings.Count(want, "\n") < 2500 {
+		t.Errorf("the blocks get %d bytes of verdicts, the lines %d", len(got), len(want))
+	}
+	if n := strings.Count(verdicts(lines, blocks, lines), "\n"); n != 3*(strings.Count(want, "\n")-1)+1 {
+		t.Errorf("%d lines of verdicts on three files", n)
+	}
+	whole, err := os.ReadFile(blocks)
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, c := range []struct {
+		name, content, says string
+		flags               []string
+	}{
+		{"cut.kgb", string(whole[:len(whole)-7]), "cut.kgb: block", nil},
+		{"text.kgb", "run,event\n1,2\n", "text.kgb: block 1", nil},
+		{"small.kgb", string(whole), "--block-events allows 10", []string{"--block-events", "10"}},
+	} {
+		path := filepath.Join(folder, c.name)
+		if err := os.WriteFile(path, []byte(c.content), 0o600); err != nil {
+			t.Fatal(err)
+		}
+		line := append([]string{"judge", "--selection", selection, path}, c.flags...)
+		if code, _, errs := command(t, line...); code != exitUsage || !strings.Contains(errs, c.says) {
+			t.Errorf("%s: code %d, %s", c.name, code, errs)
+		}
+	}
+}
+
+func TestBound(t *testing.T) {
+	t.Parallel()
+	generation := write(t, "generation.yaml", generationText)
+	wantCommand(t, `bound "gamma p -> p pi+ pi- pi0" --beam "2 GeV" --draws 20000`, exitWell, "share kept")
+	wantCommand(t, `bound --request `+generation+` --draws 1000`, exitWell, "one pion")
+	wantCommand(t, `bound "gamma p -> p eta" --beam "1 GeV" --json --draws 100`, exitWell, `"largest"`)
+	wantCommand(t, `bound "gamma p -> p eta" --beam "700 MeV"`, exitNo, "the channel is closed")
+	wantCommand(t, `bound`, exitUsage, "--request")
+	wantCommand(t, `bound "gamma p -> p eta" --beam "1 GeV" --draws 0`, exitUsage, "--draws 0")
+	wantCommand(t, `generate "gamma p -> p pi+ pi- pi0" --beam "2 GeV" --bound 0.12 --events 300`, exitWell, "overflows             0")
+	wantCommand(t, `generate "gamma p -> p pi+ pi- pi0" --beam "2 GeV" --bound 0.05 --events 300`, exitWell, "A bound larger by this factor has none")
+	wantCommand(t, `generate "gamma p -> p eta" "gamma p -> p pi0" --beam "1 GeV" --bound 0.5`, exitUsage, "--bound is of one reaction")
+}
+
+// TestGenerateKeepsNoEvents holds that a CSV file of many events takes no more memory
+// than one of few: they wait in a temporary file, which is gone afterwards.
+func TestGenerateKeepsNoEvents(t *testing.T) {
+	folder := t.TempDir()
+	t.Setenv("TMPDIR", folder)
+	out := filepath.Join(t.TempDir(), "e.csv")
+	peak := func(events string) uint64 {
+		done, most := make(chan struct{}), uint64(0)
+		go func() {
+			defer close(done)
+			if code, _, errs := command(t, "generate", "gamma p -> p pi+ pi-", "--beam", "2 GeV", "--events", events, "--show", "0", "--out", out); code != exitWell {
+				t.Error(errs)
+			}
+		}()
+		for {
+			select {
+			case <-done:
+				return most
+			case <-time.After(5 * time.Millisecond):
+				var m runtime.MemStats
+				runtime.ReadMemStats(&m)
+				most = max(most, m.HeapInuse)
+			}
+		}
+	}
+	few, many := peak("2000"), peak("60000")
+	t.Logf("%d kB with 2,000 events, %d kB with 60,000", few>>10, many>>10)
+	if many > few+24<<20 { // kept events would take 60 MB and more
+		t.Errorf("%d kB with 2,000 events, %d kB with 60,000", few>>10, many>>10)
+	}
+	left, err := os.ReadDir(folder)
+	if err != nil || len(left) > 0 {
+		t.Errorf("left behind: %v, %v", left, err)
 	}
 }

@@ -82,6 +82,7 @@ func commands(p program) []*cobra.Command {
 		channelsCommand(p),
 		decayCommand(p),
 		generateCommand(p),
+		boundCommand(p),
 		photonCommand(p),
 		photonFieldCommand(p),
 		dalitzCommand(p),

@@ -16,8 +16,51 @@ import (
 // in front. All events must be in the coordinate set, and have the same other
 // columns.
 func Write(w io.Writer, comment string, coordinates kinegate.Coordinates, events []Event) error {
-	if _, err := fmt.Fprintf(w, "# %s Units: GeV, rad, ns.\n", comment); err != nil {
+	var all shape
+	for i := range events {
+		if i == 0 {
+			all.names(&events[i])
+		}
+		all.widen(&events[i])
+	}
+	out, err := newLines(w, comment, coordinates, all)
+	if err != nil {
 		return err
+	}
+	for i := range events {
+		if err := out.add(&events[i]); err != nil {
+			return err
+		}
+	}
+	return out.finish()
+}
+
+// shape is what the columns of a file depend on.
+type shape struct {
+	objects, beams int
+	other          []string
+}
+
+// names takes the other columns from an event.
+func (s *shape) names(e *Event) { s.other = slices.Sorted(maps.Keys(e.Other)) }
+
+// widen makes room for an event.
+func (s *shape) widen(e *Event) {
+	s.objects, s.beams = max(s.objects, len(e.Objects)), max(s.beams, len(e.Beam))
+}
+
+// lines writes events one by one.
+type lines struct {
+	shape
+
+	csv     *csv.Writer
+	columns int
+}
+
+// newLines writes what stands in front of the events.
+func newLines(w io.Writer, comment string, coordinates kinegate.Coordinates, s shape) (*lines, error) {
+	if _, err := fmt.Fprintf(w, "# %s Units: GeV, rad, ns.\n", comment); err != nil {
+		return nil, err
 	}
 	var columns []string
 	for _, set := range sets {
@@ -26,37 +69,29 @@ func Write(w io.Writer, comment string, coordinates kinegate.Coordinates, events
 		}
 	}
 	if columns == nil {
-		return fmt.Errorf("coordinate set %d has no form in CSV", coordinates)
+		return nil, fmt.Errorf("coordinate set %d has no form in CSV", coordinates)
 	}
-	objects, beams := 0, 0
-	for _, e := range events {
-		objects, beams = max(objects, len(e.Objects)), max(beams, len(e.Beam))
+	l := &lines{shape: s, csv: csv.NewWriter(w), columns: len(columns)}
+	return l, l.csv.Write(heading(columns, s.objects, s.beams, s.other))
+}
+
+func (l *lines) add(e *Event) error {
+	row := []string{strconv.FormatInt(e.Run, 10), strconv.FormatInt(e.ID, 10)}
+	for _, name := range l.other {
+		row = append(row, e.Other[name])
 	}
-	out := csv.NewWriter(w)
-	var other []string
-	if len(events) > 0 {
-		other = slices.Sorted(maps.Keys(events[0].Other))
+	for i := range l.objects {
+		row = append(row, objectCells(e.Objects, i, l.columns)...)
 	}
-	if err := out.Write(heading(columns, objects, beams, other)); err != nil {
-		return err
+	for i := range l.beams {
+		row = append(row, beamCells(e.Beam, i)...)
 	}
-	for _, e := range events {
-		row := []string{strconv.FormatInt(e.Run, 10), strconv.FormatInt(e.ID, 10)}
-		for _, name := range other {
-			row = append(row, e.Other[name])
-		}
-		for i := range objects {
-			row = append(row, objectCells(e.Objects, i, len(columns))...)
-		}
-		for i := range beams {
-			row = append(row, beamCells(e.Beam, i)...)
-		}
-		if err := out.Write(row); err != nil {
-			return err
-		}
-	}
-	out.Flush()
-	return out.Error()
+	return l.csv.Write(row)
+}
+
+func (l *lines) finish() error {
+	l.csv.Flush()
+	return l.csv.Error()
 }
 
 func heading(columns []string, objects, beams int, other []string) []string {
