@@ -32,6 +32,7 @@ type desk struct {
 	metrics    *telemetry.Metrics
 	current    *atomic.Pointer[inUse]
 	streams    *openStreams
+	pressure   *pressure
 	leaving    <-chan struct{}
 
 	nonce string
@@ -278,6 +279,9 @@ func (f *front) admitShared(c *call) error {
 	if !f.rules.shared {
 		return nil
 	}
+	if err := f.pressure.refusal(); err != nil {
+		return err
+	}
 	if c.single {
 		if err := f.work.full(c.use.options.slots()); err != nil {
 			return err
@@ -321,8 +325,10 @@ func (f *front) release(c *call) {
 
 // end finishes the record of a call and returns its status.
 func (f *front) end(c *call, err error) error {
-	took := time.Since(c.begun)
+	now := time.Now()
+	took := now.Sub(c.begun)
 	failure := api.Explain(err)
+	f.judgeConnection(c, failure != nil && failure.Reason == api.CallCancelled, now)
 	if failure == nil {
 		f.metrics.CallDone(c.label, "OK", took, c.exemplar())
 		f.write(c.use.callLog.Well(), c, "OK", took)
@@ -349,6 +355,19 @@ func (f *front) end(c *call, err error) error {
 	}
 	f.write(line.Str("reason", string(failure.Reason)), c, code, took)
 	return s.Err()
+}
+
+// judgeConnection closes a connection that gives up too many calls. Behind a proxy many
+// callers share one.
+func (f *front) judgeConnection(c *call, givenUp bool, now time.Time) {
+	p, ok := peer.FromContext(c.ctx)
+	if !ok || c.use.options.BehindProxy {
+		return
+	}
+	if from, ok := p.Addr.(origin); ok && from.conn.note(givenUp, now) {
+		f.metrics.Rejected(connectionAbused)
+		_ = from.conn.Close() // what it leads to is told by its calls
+	}
 }
 
 // names are the URIs and DNS names of the caller's certificate.

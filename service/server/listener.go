@@ -27,9 +27,11 @@ const (
 	Debug   Listener = "debug"
 )
 
-// connectionLimit is the reason under which connections over the limit are counted:
-// they end before there is a call to answer.
-const connectionLimit = "CONNECTION_LIMIT"
+// Reasons under which connections are counted that end without a call to answer.
+const (
+	connectionLimit  = "CONNECTION_LIMIT"
+	connectionAbused = "CONNECTION_ABUSED"
+)
 
 // socketMode lets the owner and the group of a unix socket connect.
 const socketMode = 0o660
@@ -110,6 +112,7 @@ type placed struct {
 	since  time.Time
 	user   string // number of the user at the other end of a unix socket; empty where it cannot be told
 	once   sync.Once
+	strikes
 }
 
 // RemoteAddr is the address of the peer, through which calls find their connection.

@@ -66,12 +66,13 @@ type Deps struct {
 	Now func() time.Time
 }
 
-// slots is how much work is done at a time on the general listener.
+// slots is how much work is done at a time on the general listener: as much as it has
+// turns for, since one processor stays free of it. With more, each would only take longer.
 func (o *Options) slots() int {
 	if o.WorkSlots > 0 {
 		return o.WorkSlots
 	}
-	return runtime.GOMAXPROCS(0)
+	return max(runtime.GOMAXPROCS(0)-1, 1)
 }
 
 // limits are the options in the form the api takes.

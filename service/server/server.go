@@ -37,6 +37,7 @@ type Server struct {
 	folder       *folder       // nil for none
 	current      atomic.Pointer[inUse]
 	streams      openStreams
+	pressure     pressure
 	fronts       map[Listener]*front
 	webs         map[Listener]*http.Server
 	places       places
@@ -88,6 +89,7 @@ func New(options Options, deps Deps) (*Server, error) {
 		return nil, err
 	}
 	s.current.Store(use)
+	s.pressure.limit = int64(options.MemoryLimit)
 	metrics.SettingsReloaded(true, time.Now())
 	metrics.WorkSlots(options.slots())
 	s.health = newHealth(s.leaving)
@@ -107,7 +109,7 @@ func New(options Options, deps Deps) (*Server, error) {
 func (s *Server) build() {
 	o := &s.options
 	d := &desk{
-		limits: o.limits(), streamIdle: o.StreamIdle, metrics: s.metrics, current: &s.current, streams: &s.streams,
+		limits: o.limits(), streamIdle: o.StreamIdle, metrics: s.metrics, current: &s.current, streams: &s.streams, pressure: &s.pressure,
 		leaving: s.leaving, nonce: newNonce(),
 	}
 	gate := rules{most: func(o *Options) int { return o.GateStreams }, private: true}
@@ -242,6 +244,7 @@ func (s *Server) Serve(ctx context.Context) error {
 	}
 	go s.contained("watching settings", func() { s.watchSettings(ctx) })
 	go s.contained("watching streams", func() { s.streams.watch(ctx) })
+	go s.contained("watching memory", func() { s.pressure.watch(ctx) })
 	failed := make(chan error, len(s.fronts)+len(s.webs))
 	s.mu.Lock()
 	for name, f := range s.fronts {
