@@ -111,7 +111,9 @@ func (e *Error) complaint() string {
 		text = e.Kind.Error()
 	}
 	if e.Kind == Forbidden {
-		text = e.Field + " is " + text + ": " + e.Value
+		if text += ": " + e.Value; e.Field != "" {
+			text = e.Field + " is " + text
+		}
 	}
 	if e.Allowed != "" {
 		text += ", allowed: " + e.Allowed

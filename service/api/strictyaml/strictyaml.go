@@ -50,20 +50,21 @@ func (p Positions) Find(field string) Position {
 }
 
 // Unmarshal reads text into message, which should be empty. Without faults the
-// message holds the whole text; with faults, what could be read.
+// message holds the whole text; with faults, what could be read. A text that is not
+// YAML has no positions: nothing of it could be read.
 func Unmarshal(text []byte, message proto.Message) (Positions, []Fault) {
 	r := &reader{positions: Positions{}}
 	decoder := yaml.NewDecoder(strings.NewReader(string(text)))
 	var document, second yaml.Node
 	if err := decoder.Decode(&document); err != nil {
 		if errors.Is(err, io.EOF) {
-			return r.positions, []Fault{{Line: 1, Column: 1, Message: "the text is empty"}}
+			return nil, []Fault{{Line: 1, Column: 1, Message: "the text is empty"}}
 		}
-		return r.positions, []Fault{syntaxFault(err)}
+		return nil, syntaxFaults(string(text), err)
 	}
 	if err := decoder.Decode(&second); !errors.Is(err, io.EOF) {
 		if err != nil {
-			return r.positions, []Fault{syntaxFault(err)}
+			return nil, syntaxFaults(string(text), err)
 		}
 		r.fault(&second, "", "a second document starts here; one is allowed")
 	}
@@ -72,19 +73,6 @@ func Unmarshal(text []byte, message proto.Message) (Positions, []Fault) {
 }
 
 var syntaxPosition = regexp.MustCompile(`^yaml: (?:line (\d+): )?(.*)$`)
-
-// syntaxFault takes the place out of the reader's own message.
-func syntaxFault(err error) Fault {
-	parts := syntaxPosition.FindStringSubmatch(strings.ReplaceAll(err.Error(), "\n", " "))
-	if parts == nil {
-		return Fault{Line: 1, Message: "not YAML: " + err.Error()}
-	}
-	line, convErr := strconv.Atoi(parts[1])
-	if convErr != nil {
-		line = 1
-	}
-	return Fault{Line: line, Message: "not YAML: " + parts[2]}
-}
 
 // reader collects places and faults on its way through the tree.
 type reader struct {
@@ -123,7 +111,7 @@ func (r *reader) message(n *yaml.Node, field string, m protoreflect.Message, dep
 		return
 	}
 	if n.Kind != yaml.MappingNode {
-		r.fault(n, field, "a set of fields is needed here, found "+describe(n))
+		r.fault(n, field, "a set of fields is needed here, found "+describe(n)+shapeHint(n, m.Descriptor()))
 		return
 	}
 	seen := make(map[string]bool, len(n.Content)/2)
@@ -166,7 +154,7 @@ func (r *reader) field(n *yaml.Node, path string, m protoreflect.Message, f prot
 		return
 	}
 	if n.Kind != yaml.SequenceNode {
-		r.fault(n, path, "a list is needed here, found "+describe(n))
+		r.fault(n, path, "a list is needed here, found "+describe(n)+listHint(n))
 		return
 	}
 	list := m.Mutable(f).List()

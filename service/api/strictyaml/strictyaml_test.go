@@ -62,7 +62,7 @@ func TestUnmarshalNamesEachFault(t *testing.T) {
 	deep := strings.Repeat("{not: ", 80) + "{}" + strings.Repeat("}", 80)
 	for _, c := range []struct{ name, text, line, field, message string }{
 		{"empty", "", "1:1", "", "empty"},
-		{"not YAML", "name: [", "1:0", "", "not YAML"},
+		{"not YAML", "name: [", "1:1", "", "not YAML: a bracket"},
 		{"a list", "- name", "1:1", "", "a set of fields is needed"},
 		{"second document", "name: a\n---\nname: b\n", "2:1", "", "second document"},
 		{"unknown field", "name: a\nhypothesis: []\n", "2:1", "hypothesis", "unknown field"},
@@ -108,6 +108,48 @@ func TestUnmarshalNamesEachFault(t *testing.T) {
 			}
 			if !strings.Contains(strings.ReplaceAll(f.Message, "needed here", "needed"), c.message) {
 				t.Errorf("message %q lacks %q", f.Message, c.message)
+			}
+		})
+	}
+}
+
+// TestHintsOnCommonSlips has slips that people make, with what the message must say to help.
+func TestHintsOnCommonSlips(t *testing.T) {
+	t.Parallel()
+	const window = "hypotheses:\n  - condition: {window: {invariant_mass: {products: [pi0], min_gev: 0.1}}}\n"
+	for _, c := range []struct{ name, old, new, line, message string }{
+		{"a letter wrong", "invariant", "invarient", "2:26", "nearest: invariant_mass"},
+		{"camel case", "invariant_mass", "invariantMass", "2:26", "nearest: invariant_mass"},
+		{"another unit", "min_gev", "min_mev", "2:60", "nearest: min_gev"},
+		{"a unit in the value", "0.1}", "0.1 GeV}", "2:69", "the unit is that of the field's name"},
+		{"a comma in a number", "0.1}", "0,1}", "2:71", "the decimal sign is a point"},
+		{"nothing before the point", "0.1}", ".1}", "2:69", "both sides of the point"},
+		{"a typographic minus", "0.1}", "\u22120.1}", "2:69", "the minus sign is written -"},
+		{"typographic quotes", "[pi0]", "[\u201cpi0\u201d]", "2:54", "quotes are written"},
+		{"no window around", "{window: {invariant_mass: {products: [pi0], min_gev: 0.1}}}", "{invariant_mass: {products: [pi0]}}", "2:17", "it stands inside window"},
+		{"a list of one", "[pi0]", "pi0", "2:53", "a list of one is written [pi0]"},
+		{"a list for a set", "{window: {invariant_mass: {products: [pi0], min_gev: 0.1}}}", "[{}]", "2:16", "its fields are all_of, any_of, not, window"},
+		{"a word for a set", "- condition:", "- extra_objects: any\n    condition:", "2:20", "write {any: {}}"},
+		{"a set for a list", "hypotheses:\n  - condition:", "hypotheses:\n    condition:", "2:5", `each entry starts with "-"`},
+		{"a tab", "  - condition", "\t- condition", "2:1", "plain blanks, found '\\t'"},
+		{"a wide blank", "  - condition", "  - name: a\n\u00a0\u00a0  condition", "3:1", `plain blanks, found '\u00a0'`},
+		{"a brace open", "0.1}}}", "0.1}}", "2:1", "is not closed"},
+		{"a dash lacking", "  - condition", "  name: a\n    condition", "3:1", `a "-" may be missing`},
+		{"a quote open", "[pi0]", "[\"pi0]", "2:1", "a quote that opens here"},
+	} {
+		t.Run(c.name, func(t *testing.T) {
+			t.Parallel()
+			text := strings.Replace(window, c.old, c.new, 1)
+			if text == window {
+				t.Fatal("the slip changes nothing")
+			}
+			_, faults := strictyaml.Unmarshal([]byte(text), &kinegatev1.Selection{})
+			if len(faults) != 1 {
+				t.Fatalf("%d faults: %+v", len(faults), faults)
+			}
+			f := faults[0]
+			if at := fmt.Sprintf("%d:%d", f.Line, f.Column); at != c.line || !strings.Contains(f.Message, c.message) {
+				t.Errorf("%s: %s, want %s: ... %s", at, f.Message, c.line, c.message)
 			}
 		})
 	}

@@ -57,7 +57,7 @@ func scalar(n *yaml.Node, f protoreflect.FieldDescriptor) (value protoreflect.Va
 		if x, err := strconv.ParseFloat(n.Value, 64); err == nil && !quoted && numberForm.MatchString(n.Value) {
 			return protoreflect.ValueOfFloat64(x), ""
 		}
-		return value, "a finite decimal number is needed, found " + describe(n)
+		return value, "a finite decimal number is needed, found " + describe(n) + numberHint(n.Value)
 	case protoreflect.Int32Kind, protoreflect.Int64Kind:
 		bits := 64
 		if f.Kind() == protoreflect.Int32Kind {
@@ -84,6 +84,11 @@ func textValue(n *yaml.Node, quoted bool) (value protoreflect.Value, problem str
 	}
 	if !quoted && slices.Contains(oldBooleans, strings.ToLower(n.Value)) {
 		return value, "write " + strconv.Quote(n.Value) + " in quotes: older YAML reads it as true or false"
+	}
+	if !quoted {
+		if problem := textHint(n.Value); problem != "" {
+			return value, problem
+		}
 	}
 	return protoreflect.ValueOfString(n.Value), ""
 }
@@ -117,16 +122,6 @@ func describe(n *yaml.Node) string {
 		return strconv.Quote(n.Value[:most]) + "..."
 	}
 	return strconv.Quote(n.Value)
-}
-
-// unknownField names the fields there are.
-func unknownField(name string, d protoreflect.MessageDescriptor) string {
-	names := make([]string, d.Fields().Len())
-	for i := range names {
-		names[i] = string(d.Fields().Get(i).Name())
-	}
-	slices.Sort(names)
-	return "unknown field " + strconv.Quote(name) + ", allowed: " + strings.Join(names, ", ")
 }
 
 func join(field, name string) string {

@@ -77,5 +77,9 @@ func (e *environment) describeCheck(name string, r *kinegatev1.CheckSelectionRes
 
 // faultText is a fault in the form that editors jump to.
 func faultText(name string, f *kinegatev1.FieldFault) string {
-	return fmt.Sprintf("%s:%d:%d: %s: %s", name, f.GetLine(), f.GetColumn(), f.GetField(), f.GetMessage())
+	message := f.GetMessage()
+	if f.GetField() != "" {
+		message = f.GetField() + ": " + message
+	}
+	return fmt.Sprintf("%s:%d:%d: %s", name, f.GetLine(), f.GetColumn(), message)
 }
