@@ -83,10 +83,27 @@ func (g *generationStream) run(header *kinegatev1.GenerationHeader) error {
 	return g.send(&kinegatev1.GenerateEventsResponse{Frame: &kinegatev1.GenerateEventsResponse_Summary{Summary: g.summary()}})
 }
 
+// send waits until the caller has room for a message. A caller that takes nothing for
+// too long loses the stream, with its connection: see judgeStream.abandon.
 func (g *generationStream) send(m *kinegatev1.GenerateEventsResponse) error {
-	err := g.stream.Send(m)
-	g.lastSent = time.Now()
-	return err
+	g.work.end() // others have the turn meanwhile
+	sent := make(chan error, 1)
+	go func() { sent <- Contain(func() error { return g.stream.Send(m) }) }()
+	limit := g.service.deps.StallLimit
+	stalled := time.NewTimer(limit)
+	defer stalled.Stop()
+	select {
+	case err := <-sent:
+		g.lastSent = time.Now()
+		return err
+	case <-stalled.C:
+	}
+	if connection := g.service.deps.Connection(g.stream.Context()); connection.Close != nil {
+		connection.Close()
+		<-sent // only its end matters
+	}
+	next := strconv.FormatInt(g.next, 10)
+	return Refuse(StreamStalled, "the caller took no event for "+limit.String()+"; the slice goes on from event "+next, "next_event", next)
 }
 
 // fill makes the events of the next block. Where blocks end depends on the events alone,

@@ -31,8 +31,8 @@ type Deps struct {
 	// StreamIdle is the time without a frame after which a judge stream is ended; a
 	// minute if 0.
 	StreamIdle time.Duration
-	// StallLimit is the time without progress in sending to a judge stream after which
-	// it is ended; 5 s if 0.
+	// StallLimit is the time without progress in sending to a stream after which it is
+	// ended; 5 s if 0.
 	StallLimit time.Duration
 	// Drain says when to leave. Optional.
 	Drain Drain

@@ -77,3 +77,38 @@ func TestGenerateEventsRefusal(t *testing.T) {
 	_, err = stream.Recv()
 	wantReason(t, err, api.ChannelClosed)
 }
+
+// TestStalledGenerationIsEnded holds that a caller who takes no event is cut off after the
+// stall limit, alone where many share the connection, and that the server can then leave.
+func TestStalledGenerationIsEnded(t *testing.T) {
+	for _, proxy := range []bool{false, true} {
+		t.Run(map[bool]string{false: "its connection", true: "behind a proxy"}[proxy], func(t *testing.T) {
+			r := start(t, func(o *Options, _ *Deps) { o.BehindProxy, o.StallLimit = proxy, time.Second })
+			conn := r.general(t)
+			stream, err := kinegatev1.NewGenerationServiceClient(conn).GenerateEvents(t.Context(), endlessSample())
+			if err != nil {
+				t.Fatal(err)
+			}
+			if _, err := stream.Recv(); err != nil {
+				t.Fatal(err)
+			}
+			began := time.Now()
+			eventually(t, "the end of the stalled call", func() bool { return r.metric(t, "rpc_server_calls_in_flight") == 0 })
+			if took := time.Since(began); took < 900*time.Millisecond || took > 4*time.Second {
+				t.Errorf("ended after %v", took)
+			}
+			if proxy {
+				if _, err := kinegatev1.NewInfoServiceClient(conn).GetInfo(t.Context(), &kinegatev1.GetInfoRequest{}); err != nil {
+					t.Errorf("another call of the connection: %v", err)
+				}
+				for err == nil { // what was on its way, and then the reason
+					_, err = stream.Recv()
+				}
+				wantReason(t, err, api.StreamStalled)
+			}
+			if err := r.Shutdown(t.Context()); err != nil {
+				t.Errorf("Shutdown: %v", err)
+			}
+		})
+	}
+}

@@ -20,7 +20,8 @@ func judgeCommand(p program) *cobra.Command {
 	c := &cobra.Command{
 		Use:   "judge --selection FILE EVENTS.csv...",
 		Short: "Judge measured events from CSV files against a selection",
-		Long: "judge streams events from CSV files to a server, which judges them against a selection,\n" +
+		Long: "judge streams events from CSV files, or from .kgb files of kinegate generate, to a server,\n" +
+			"which judges them against a selection,\n" +
 			"and prints a summary. Columns: run, event; px1, py1, pz1, m1 or p1, theta1, phi1 or pt1,\n" +
 			"eta1, phi1, m1 for each object (GeV, rad); class1 (photon, positive, negative, neutral),\n" +
 			"q1 (charge) or pid1 (particle number); beam_energy1, beam_sigma1, beam_time1 (GeV, GeV, ns)\n" +
