@@ -127,7 +127,7 @@ func TestStalledReaderBehindProxy(t *testing.T) {
 }
 
 // TestWriterWithoutReader writes 64 MiB before the first read: no send waits longer than
-// a second on a machine that does nothing else, the end is a clear answer or a closed connection, and what comes out is true.
+// a second, the end is a clear answer or a closed connection, and what comes out is true.
 func TestWriterWithoutReader(t *testing.T) {
 	r := start(t)
 	const perBlock = 4000
@@ -145,10 +145,10 @@ func TestWriterWithoutReader(t *testing.T) {
 			open.Entries = entries
 			send(t, stream, &kinegatev1.JudgeRequest{Frame: &kinegatev1.JudgeRequest_Open{Open: open}})
 			bytes, longest := writeAll(t, stream, 64<<20, perBlock, c)
-			if longest > 4*time.Second {
+			if longest > time.Second*slowdown {
 				t.Errorf("one send took %v", longest)
 			}
-			t.Logf("%d bytes written, the longest send took %v", bytes, longest)
+			t.Logf("FIGURE S1 %s: %d bytes written, the longest send took %v", name, bytes, longest)
 			for {
 				v, err := nextVerdict(stream)
 				if errors.Is(err, io.EOF) {
