@@ -1,27 +1,21 @@
 package server
 
 import (
-	"context"
 	"crypto/tls"
 	"fmt"
 	"net"
 	"os"
 	"path/filepath"
-	"slices"
 	"sync"
 	"sync/atomic"
 	"testing"
 	"time"
 
-	"google.golang.org/genproto/googleapis/rpc/errdetails"
 	"google.golang.org/grpc"
 	"google.golang.org/grpc/credentials/insecure"
 	healthpb "google.golang.org/grpc/health/grpc_health_v1"
-	"google.golang.org/grpc/status"
-	"google.golang.org/protobuf/proto"
 
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
-	"example.org/kinegate/service/api"
 )
 
 // operations skips a test that takes long, unless it was asked for: .ci/operations does.
@@ -36,15 +30,6 @@ func operations(t *testing.T) {
 func figure(t *testing.T, format string, values ...any) {
 	t.Helper()
 	t.Logf("FIGURE "+format, values...)
-}
-
-// quantile is the q-quantile of durations, which it sorts.
-func quantile(d []time.Duration, q float64) time.Duration {
-	if len(d) == 0 {
-		return 0
-	}
-	slices.Sort(d)
-	return d[min(int(q*float64(len(d))), len(d)-1)]
 }
 
 // TestCertificateRotation swaps the folder of certificates 200 times as an orchestrator
@@ -237,118 +222,4 @@ func judgeUntilDrained(stream judgeClient) (answered int64, err error) {
 			return answered, nil
 		}
 	}
-}
-
-// holding is a service whose every block takes its slot for a while. It waits instead of
-// computing, so that the figures show the admission and not how busy the machine is
-// otherwise.
-type holding struct {
-	kinegatev1.UnimplementedSelectionServiceServer
-
-	work time.Duration
-}
-
-func (h holding) JudgeBlock(context.Context, *kinegatev1.JudgeBlockRequest) (*kinegatev1.JudgeBlockResponse, error) {
-	time.Sleep(h.work)
-	return &kinegatev1.JudgeBlockResponse{}, nil
-}
-
-// TestOverload offers work at 1, 2, 5 and 10 times what two slots can do, whether or not
-// the answers come: goodput stays, what is admitted stays fast, what is not is refused
-// at once, and the server recovers.
-func TestOverload(t *testing.T) {
-	operations(t)
-	const work, slots, span = 20 * time.Millisecond, 2, 10 * time.Second
-	r := prepare(t, func(o *Options, _ *Deps) { o.WorkSlots, o.CallerCalls = slots, o.ConnectionStreams })
-	old := r.fronts[General]
-	old.server.Stop() // it would keep its workers
-	f := newFront(old.desk, old.rules, r.serverOptions(r.options.GeneralStreamWindow, r.options.GeneralConnectionWindow))
-	kinegatev1.RegisterSelectionServiceServer(f, holding{work: work})
-	healthpb.RegisterHealthServer(f, r.health)
-	r.fronts[General] = f
-	r.serve(t)
-	var conns []*grpc.ClientConn
-	for range 4 {
-		conns = append(conns, r.general(t))
-	}
-	request, err := proto.Marshal(&kinegatev1.JudgeBlockRequest{Block: &kinegatev1.EventBlock{ObjectClasses: make([]byte, 8192)}})
-	if err != nil {
-		t.Fatal(err)
-	}
-	rate := func(times float64, span time.Duration) overloaded {
-		return offer(t, conns, request, slots*times/work.Seconds(), span)
-	}
-	idle := rate(0.1, 5*time.Second)
-	figure(t, "T2 idle: admitted p99 %.1f ms", ms(quantile(idle.admitted, 0.99)))
-	peak := 0.0
-	for _, times := range []float64{1, 2, 5, 10} {
-		got := rate(times, span)
-		goodput := float64(len(got.admitted)) / span.Seconds()
-		peak = max(peak, goodput)
-		figure(t, "T2 offered %gx: %.0f calls/s sent, goodput %.0f/s, admitted p99 %.1f ms, rejected p50 %.2f p99 %.2f ms, other %d",
-			times, float64(got.sent)/span.Seconds(), goodput, ms(quantile(got.admitted, 0.99)),
-			ms(quantile(got.rejected, 0.5)), ms(quantile(got.rejected, 0.99)), got.other)
-		if times == 10 && goodput < 0.9*peak {
-			t.Errorf("goodput %.0f of %.0f", goodput, peak)
-		}
-		if got.other > 0 {
-			t.Errorf("%d calls neither answered nor refused as overload", got.other)
-		}
-	}
-	after := rate(0.1, 2*time.Second)
-	figure(t, "T2 after the load: %d of %d calls answered, p99 %.1f ms", len(after.admitted), after.sent, ms(quantile(after.admitted, 0.99)))
-	if len(after.rejected) > after.sent/10 {
-		t.Errorf("%d of %d calls refused after the load", len(after.rejected), after.sent)
-	}
-}
-
-func ms(d time.Duration) float64 { return float64(d) / float64(time.Millisecond) }
-
-// overloaded is what came of offered calls.
-type overloaded struct {
-	sent, other        int
-	admitted, rejected []time.Duration
-}
-
-// offer sends calls at a rate without waiting for answers.
-func offer(t *testing.T, conns []*grpc.ClientConn, request []byte, rate float64, span time.Duration) overloaded {
-	t.Helper()
-	var mu sync.Mutex
-	var all sync.WaitGroup
-	var o overloaded
-	begun := time.Now()
-	for time.Since(begun) < span {
-		due := int(time.Since(begun).Seconds() * rate)
-		for ; o.sent < due; o.sent++ {
-			conn := conns[o.sent%len(conns)]
-			all.Go(func() {
-				start := time.Now()
-				err := rawly(t.Context(), conn, kinegatev1.SelectionService_JudgeBlock_FullMethodName, request)
-				took := time.Since(start)
-				mu.Lock()
-				defer mu.Unlock()
-				switch {
-				case err == nil:
-					o.admitted = append(o.admitted, took)
-				case isReason(err, api.ServerOverloaded):
-					o.rejected = append(o.rejected, took)
-				default:
-					o.other++
-				}
-			})
-		}
-		time.Sleep(time.Millisecond)
-	}
-	all.Wait()
-	return o
-}
-
-// isReason reports whether an error carries a reason.
-func isReason(err error, want api.Reason) bool {
-	for _, d := range status.Convert(err).Details() {
-		if info, ok := d.(*errdetails.ErrorInfo); ok && info.GetReason() == string(want) {
-			return true
-		}
-	}
-	return false
 }

@@ -55,11 +55,11 @@ func freePorts(t *testing.T) (ports [4]int) {
 }
 
 // start starts the process and waits until it serves.
-func (r *replica) start(t *testing.T) {
+func (r *replica) start(t *testing.T, more ...string) {
 	t.Helper()
 	at := func(i int) string { return "127.0.0.1:" + strconv.Itoa(r.ports[i]) }
-	r.process = process(t, "serve", "--gate-address", at(0), "--general-address", at(1), "--health-address", at(2),
-		"--metrics-address", at(3), "--drain-notice", "200ms", "--log-level", "error")
+	r.process = process(t, append([]string{"serve", "--gate-address", at(0), "--general-address", at(1), "--health-address", at(2),
+		"--metrics-address", at(3), "--drain-notice", "200ms", "--log-level", "error"}, more...)...)
 	if err := r.process.Start(); err != nil {
 		t.Fatal(err)
 	}
@@ -208,10 +208,52 @@ func TestUnreadLog(t *testing.T) {
 	}
 }
 
+// spanOf is how long a test takes: what a variable says, or else its usual time.
+func spanOf(t *testing.T, variable string, usual time.Duration) time.Duration {
+	t.Helper()
+	text := os.Getenv(variable)
+	if text == "" {
+		return usual
+	}
+	span, err := time.ParseDuration(text)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return span
+}
+
 // scrape returns the value of a metric without labels.
 func scrape(t *testing.T, where, name string) string {
 	t.Helper()
-	conn, err := (&net.Dialer{}).DialContext(context.Background(), "tcp", where)
+	for line := range strings.Lines(metrics(t, where)) {
+		if value, ok := strings.CutPrefix(line, name+" "); ok {
+			return strings.TrimSpace(value)
+		}
+	}
+	return ""
+}
+
+// sumOf is the sum of a metric over its labels.
+func sumOf(t *testing.T, where, name string) float64 {
+	t.Helper()
+	total := 0.0
+	for line := range strings.Lines(metrics(t, where)) {
+		if strings.HasPrefix(line, name+"{") {
+			fields := strings.Fields(line)
+			value, err := strconv.ParseFloat(fields[len(fields)-1], 64)
+			if err != nil {
+				t.Fatal(err)
+			}
+			total += value
+		}
+	}
+	return total
+}
+
+// metrics is the text of a scrape.
+func metrics(t *testing.T, where string) string {
+	t.Helper()
+	conn, err := (&net.Dialer{}).DialContext(context.Background(), "tcp", where) // the test's may be over
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -221,10 +263,5 @@ func scrape(t *testing.T, where, name string) string {
 	if err != nil {
 		t.Fatal(err)
 	}
-	for line := range strings.Lines(string(text)) {
-		if value, ok := strings.CutPrefix(line, name+" "); ok {
-			return strings.TrimSpace(value)
-		}
-	}
-	return ""
+	return string(text)
 }

@@ -49,10 +49,7 @@ func memoryGroup(t *testing.T, limit int) (folder, peakFile string) {
 func TestMemoryOfGroup(t *testing.T) {
 	operations(t)
 	const limit = 256 << 20
-	span := time.Minute
-	if s := os.Getenv("PRESSURE_SPAN"); s != "" {
-		span, _ = time.ParseDuration(s)
-	}
+	span := spanOf(t, "PRESSURE_SPAN", time.Minute)
 	group, peakFile := memoryGroup(t, limit)
 	self := process(t, onLoopback("--drain-notice", "0s", "--drain-time", "5s", "--caller-calls", "128", "--log-burst", "1")...)
 	p := exec.CommandContext(t.Context(), "sh", append([]string{"-c", `echo $$ >"$0/cgroup.procs"; exec "$@"`, group, self.Path}, self.Args[1:]...)...) //nolint:gosec // the test binary itself
