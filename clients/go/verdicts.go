@@ -18,8 +18,10 @@ type Verdicts struct {
 
 	entryOffsets, assignmentOffsets, observableOffsets []int32
 	hypotheses, beamRows, assignments                  []int16
-	weights, observables                               []float64
+	weights, observables, uncertainties                []float64
 	tried                                              []int32
+	chiSquares, probabilities                          []float64
+	degreesOfFreedom, iterations                       []int16
 }
 
 // Entry is one entry of a verdict block.
@@ -38,6 +40,26 @@ type Entry struct {
 	Assignment []int16
 	// Observables are the recorded values; NaN is not computed.
 	Observables []float64
+	// Uncertainties are their standard deviations, NaN for none; nil where no hypothesis
+	// of the selection asks for them.
+	Uncertainties []float64
+	// Fit is the fit; nil where no hypothesis of the selection has one.
+	Fit *Fit
+}
+
+// Fit is the constrained fit of an entry.
+type Fit struct {
+	// Status says how it ended; unspecified without a fit.
+	Status kinegatev1.FitStatus
+	// ChiSquare is the minimum only where the fit converged; NaN without a fit.
+	ChiSquare float64
+	// DegreesOfFreedom are the constraints less the unmeasured parameters.
+	DegreesOfFreedom int
+	// Probability is that of a larger chi-square; NaN unless the fit converged with a
+	// degree of freedom.
+	Probability float64
+	// Iterations is the number of steps.
+	Iterations int
 }
 
 // ReadVerdicts reads the columns of a verdict block that was not rejected.
@@ -63,6 +85,13 @@ func ReadVerdicts(block *kinegatev1.VerdictBlock) (*Verdicts, error) {
 		v.assignments = read(&r, column.Int16s, e.GetAssignments())
 		v.observableOffsets = read(&r, column.Int32s, e.GetObservableOffsets())
 		v.observables = read(&r, column.Float64s, e.GetObservables())
+		v.uncertainties = read(&r, column.Float64s, e.GetObservableUncertainties())
+		if f := e.GetFits(); f != nil {
+			v.chiSquares = read(&r, column.Float64s, f.GetChiSquares())
+			v.degreesOfFreedom = read(&r, column.Int16s, f.GetDegreesOfFreedom())
+			v.probabilities = read(&r, column.Float64s, f.GetProbabilities())
+			v.iterations = read(&r, column.Int16s, f.GetIterations())
+		}
 	}
 	if r.err != nil {
 		return nil, fmt.Errorf("verdict block %d: %w", block.GetSequence(), r.err)
@@ -95,17 +124,30 @@ func (v *Verdicts) Entries(i int) []Entry {
 		return nil
 	}
 	var entries []Entry
-	statuses := v.Block.GetEntries().GetStatuses()
+	all := v.Block.GetEntries()
+	statuses, fits := all.GetStatuses(), all.GetFits().GetStatuses()
 	for k := v.entryOffsets[i]; k < v.entryOffsets[i+1]; k++ {
-		entries = append(entries, Entry{
+		from, to := v.observableOffsets[k], v.observableOffsets[k+1]
+		entry := Entry{
 			Hypothesis:  int(v.hypotheses[k]),
 			BeamRow:     int(v.beamRows[k]),
 			Weight:      v.weights[k],
 			Status:      kinegatev1.EntryStatus(statuses[k]),
 			Tried:       int(v.tried[k]),
 			Assignment:  v.assignments[v.assignmentOffsets[k]:v.assignmentOffsets[k+1]],
-			Observables: v.observables[v.observableOffsets[k]:v.observableOffsets[k+1]],
-		})
+			Observables: v.observables[from:to],
+		}
+		if all.ObservableUncertainties != nil {
+			entry.Uncertainties = v.uncertainties[from:to]
+		}
+		if all.GetFits() != nil {
+			entry.Fit = &Fit{
+				Status: kinegatev1.FitStatus(fits[k]), ChiSquare: v.chiSquares[k],
+				DegreesOfFreedom: int(v.degreesOfFreedom[k]), Probability: v.probabilities[k],
+				Iterations: int(v.iterations[k]),
+			}
+		}
+		entries = append(entries, entry)
 	}
 	return entries
 }

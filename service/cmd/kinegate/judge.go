@@ -28,9 +28,13 @@ func judgeCommand(p program) *cobra.Command {
 			"for each tagged candidate. Other columns are kept for --compare.",
 		Example: `  kinegate judge --selection dimuon.yaml dimuon_2011A.csv
   kinegate judge --selection dimuon.yaml dimuon_2011A.csv --out verdicts.csv --histogram "dimuon/M=2 GeV:110 GeV:27"
-  kinegate judge --selection dimuon.yaml dimuon_2011A.csv --compare M=dimuon/M`,
+  kinegate judge --selection dimuon.yaml dimuon_2011A.csv --compare M=dimuon/M
+  kinegate judge --selection dimuon.yaml dimuon_2011A.csv --explain 74969122`,
 		Args: usage(cobra.MinimumNArgs(1)),
-		RunE: func(c *cobra.Command, args []string) error { return j.run(c.Context(), args) },
+		RunE: func(c *cobra.Command, args []string) error {
+			j.explaining = c.Flags().Changed("explain")
+			return j.run(c.Context(), args)
+		},
 	}
 	j.flags(c)
 	f := c.Flags()
@@ -38,6 +42,8 @@ func judgeCommand(p program) *cobra.Command {
 	f.StringVar(&j.outFile, "out", "", "write one line per event with its verdicts to this CSV file")
 	f.StringArrayVar(&j.compare, "compare", nil, "compare a column with a recorded observable, as COLUMN=NAME/LABEL; NAME is a hypothesis or a group")
 	f.StringArrayVar(&j.histograms, "histogram", nil, `draw a recorded observable, as NAME/LABEL=LOW:HIGH:BINS`)
+	f.Int64Var(&j.explain, "explain", 0, "explain the verdict on the event of this id, and judge no other")
+	f.IntVar(&j.assignments, "assignments", 3, "assignments to show for a hypothesis with --explain, 1 to 1000") //nolint:mnd // a default
 	f.IntVar(&j.blockEvents, "block-events", 1000, "events per block, 1 to 4096")
 	f.StringVar(&j.gateAddress, "gate-address", "", "server for the judge stream, if not that of --address")
 	return c
@@ -50,6 +56,10 @@ type judgeRun struct {
 	selectionFile, outFile, gateAddress string
 	compare, histograms                 []string
 	blockEvents                         int
+
+	explaining  bool
+	explain     int64
+	assignments int
 
 	checked *kinegatev1.CheckSelectionResponse
 }
@@ -76,6 +86,9 @@ func (j *judgeRun) run(ctx context.Context, files []string) error {
 	defer closeClients()
 	if err := j.check(ctx, client, string(yaml)); err != nil {
 		return err
+	}
+	if j.explaining {
+		return j.explainEvent(ctx, client, files)
 	}
 	sinks, err := j.sinks()
 	if err != nil {
