@@ -145,7 +145,10 @@ type Accidentals struct {
 func (a Accidentals) mean() float64 { return a.RateHz * a.WindowNS * 1e-9 }
 
 // Validate returns every fault of the configuration as a fault.List, or nil.
-func (c *Config) Validate() error {
+func (c *Config) Validate() error { return c.validate(func() bool { return false }) }
+
+// validate gives up, with whatever it found, when stop returns true.
+func (c *Config) validate(stop func() bool) error {
 	var list fault.List
 	if c.Initial == nil {
 		list = append(list, fault.New(fault.Invalid, "initial", "", "an initial state"))
@@ -160,6 +163,9 @@ func (c *Config) Validate() error {
 	}
 	sum := 0.0
 	for i := range c.Channels {
+		if stop() {
+			break
+		}
 		list = c.Channels[i].faults(list, "channels["+strconv.Itoa(i)+"]")
 		sum += c.Channels[i].Fraction
 	}

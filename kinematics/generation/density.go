@@ -93,15 +93,14 @@ func polynomial(terms []DalitzTerm, a, b, c float64) float64 {
 	x := math.Sqrt(3) * (a - b)
 	y := float64(3*c) - 1
 	sum := 0.0
-	for _, term := range terms {
-		v := term.Coefficient
-		for range term.PowerX {
-			v *= x
-		}
-		for range term.PowerY {
-			v *= y
-		}
-		sum += float64(v)
+	var px, py [maxPower + 1]float64
+	px[0], py[0] = 1, 1
+	for n := range maxPower {
+		px[n+1], py[n+1] = px[n]*x, py[n]*y
+	}
+	for i := range terms {
+		term := &terms[i]
+		sum += float64(term.Coefficient * px[term.PowerX] * py[term.PowerY])
 	}
 	return sum
 }

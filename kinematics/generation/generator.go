@@ -1,6 +1,7 @@
 package generation
 
 import (
+	"errors"
 	"math"
 	"slices"
 	"strconv"
@@ -26,8 +27,19 @@ type Generator struct {
 // New prepares a generator. It returns a fault.List with every fault of the
 // configuration, or a BelowThreshold fault for a channel that is closed at
 // every energy of the beam.
-func New(config Config) (*Generator, error) {
-	if err := config.Validate(); err != nil {
+func New(config Config) (*Generator, error) { return NewUntil(config, func() bool { return false }) }
+
+// ErrStopped ends a preparation that its stop ended.
+var ErrStopped = errors.New("generation: stopped while preparing")
+
+// NewUntil is New with a stop that is asked every few milliseconds, as preparing many
+// channels with wide spectra and densities can take seconds; when it returns true the
+// error is ErrStopped.
+func NewUntil(config Config, stop func() bool) (*Generator, error) {
+	switch err := config.validate(stop); {
+	case stop():
+		return nil, ErrStopped
+	case err != nil:
 		return nil, err
 	}
 	g := &Generator{config: config, source: config.Initial.source()}
@@ -36,7 +48,10 @@ func New(config Config) (*Generator, error) {
 	for i := range config.Channels {
 		channel := &config.Channels[i]
 		fractions = append(fractions, channel.Fraction)
-		p := newPlan(channel)
+		p, ok := newPlan(channel, stop)
+		if !ok {
+			return nil, ErrStopped
+		}
 		g.plans = append(g.plans, p)
 		if f := g.open(p); f != nil {
 			f.Field = "channels[" + strconv.Itoa(i) + "]"
@@ -44,7 +59,9 @@ func New(config Config) (*Generator, error) {
 			closed = append(closed, f)
 			continue
 		}
-		g.prepare(p)
+		if !g.prepare(p, stop) {
+			return nil, ErrStopped
+		}
 	}
 	if len(closed) > 0 {
 		return nil, closed
@@ -70,13 +87,14 @@ func (g *Generator) open(p *plan) *fault.Error {
 	return nil
 }
 
-// prepare computes what the plan needs of the energies.
-func (g *Generator) prepare(p *plan) {
+// prepare computes what the plan needs of the energies, and returns false when it was
+// stopped.
+func (g *Generator) prepare(p *plan, stop func() bool) bool {
 	low, high := g.source.limits()
 	low = max(low, p.threshold)
 	p.rate = p.channel.Energy.Curve
 	if p.channel.Energy.Kind == LawRate {
-		p.rate = lawCurve(p.channel.Angle.Law, leptonOf(p.channel, g.config.Initial), low, high)
+		p.rate = lawCurve(p.channel.Angle.Law, leptonOf(p.channel, g.config.Initial), low, high, stop)
 	}
 	if p.rate != nil {
 		p.rateTop = slices.Max(p.rate.Y)
@@ -85,20 +103,24 @@ func (g *Generator) prepare(p *plan) {
 		p.angle.analyse(g.config.Polarisation, p.channel.Angle.Asymmetry)
 	}
 	if p.channel.Energy.Kind == PhaseSpaceRate {
-		p.joint = g.jointCeiling(p, low, high)
+		p.joint = g.jointCeiling(p, low, high, stop)
 	}
 	if g.config.Weighted && p.channel.Energy.Kind != PhaseSpaceRate && low < high {
-		p.norm = g.meanFractions(p, low, high)
+		p.norm = g.meanFractions(p, low, high, stop)
 	}
+	return !stop()
 }
 
 // jointCeiling bounds weight over flux for all energies: its largest value on a
 // grid of the energies that can occur, two per cent up.
-func (g *Generator) jointCeiling(p *plan, low, high float64) float64 {
+func (g *Generator) jointCeiling(p *plan, low, high float64, stop func() bool) float64 {
 	top := 0.0
 	scan := random.New(0, random.Bounds, 0)
 	const grid = 4000
-	for range grid {
+	for i := range grid {
+		if i%stopEvery == 0 && stop() {
+			return 0
+		}
 		st := g.source.draw(&scan)
 		if st.m > low {
 			top = max(top, p.root.ceiling(p.nodes, st.m)/st.flux())
@@ -125,11 +147,14 @@ func (g *Generator) endCeiling(p *plan, high float64) float64 {
 // that weighted events over a spread of energies follow the asked rate. Two
 // thousand draws a node give it to about one per cent; the nodes lie closer
 // towards the threshold.
-func (g *Generator) meanFractions(p *plan, low, high float64) *Curve {
+func (g *Generator) meanFractions(p *plan, low, high float64, stop func() bool) *Curve {
 	const nodes, draws = 48, 2000
 	w := g.NewWorker()
 	c := &Curve{}
 	for i := range nodes + 1 {
+		if stop() {
+			return nil
+		}
 		x := float64(i) / nodes
 		m := between(low, high, x*x)
 		if i == 0 {

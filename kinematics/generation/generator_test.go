@@ -4,6 +4,7 @@ import (
 	"errors"
 	"math"
 	"testing"
+	"time"
 
 	"example.org/kinegate/kinematics/event"
 	"example.org/kinegate/kinematics/fault"
@@ -236,4 +237,30 @@ func BenchmarkMixture(b *testing.B) {
 		n += 1000
 	}
 	b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(n), "ns/event")
+}
+
+// TestAttemptsAreShared holds that the loops of one event share its attempts: decays that
+// are never accepted, one inside the other, take no more than one loop.
+func TestAttemptsAreShared(t *testing.T) {
+	never := DalitzPolynomial{Terms: []DalitzTerm{{Coefficient: 1}, {Coefficient: -1 - 1e-12, PowerX: 0, PowerY: 0}, {Coefficient: 1e-9, PowerX: 8}}}
+	broad := Product{
+		Number: 113, MassGeV: 0.775, WidthGeV: 0.15,
+		Decay: &Decay{Products: []Product{{Number: 211, MassGeV: 0.1396}, {Number: -211, MassGeV: 0.1396}}},
+	}
+	c := Config{
+		Seed: 3, Initial: Total{SqrtSGeV: 6},
+		Channels: []Channel{{Products: []Product{
+			{Number: 2212, MassGeV: 0.938},
+			{Number: 9, MassGeV: 3, Decay: &Decay{Products: []Product{broad, broad, broad}, Density: never}},
+		}}},
+	}
+	g := generator(t, c)
+	began := time.Now()
+	_, stats := fill(t, g, 0, 3)
+	if took := time.Since(began); took > 5*time.Second {
+		t.Errorf("three events took %v", took)
+	}
+	if stats.Exhausted == 0 || stats.Empty != stats.Exhausted {
+		t.Errorf("stats %+v", stats)
+	}
 }

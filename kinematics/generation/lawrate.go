@@ -13,12 +13,15 @@ const lawPoints = 4000
 // lawCurve is the total cross-section of a law against sqrt(s) in units of its
 // own, for a charged lepton of the given mass: PairEnergy.Total,
 // PairEnergy.AnnihilationTotal and KleinNishinaTotal of the package photon.
-func lawCurve(law AngularLaw, mass, low, high float64) *Curve {
+func lawCurve(law AngularLaw, mass, low, high float64, stop func() bool) *Curve {
 	c := &Curve{}
 	if high <= low {
 		low = high * (1 - 0x1p-20) // one energy: any curve does
 	}
 	for i := range lawPoints + 1 {
+		if i%stopEvery == 0 && stop() {
+			break
+		}
 		x := float64(i) / lawPoints
 		m := between(low, high, x*x)
 		if i == lawPoints {

@@ -54,7 +54,11 @@ type plan struct {
 	norm *Curve
 }
 
-func newPlan(c *Channel) *plan {
+// newPlan prepares a channel; it returns false when it was stopped.
+func newPlan(c *Channel, stop func() bool) (made *plan, ok bool) {
+	if stop() {
+		return nil, false
+	}
 	p := &plan{channel: c, branching: branching(c.Products), bound: c.Bound}
 	if p.bound == 0 {
 		p.bound = 1
@@ -65,7 +69,7 @@ func newPlan(c *Channel) *plan {
 		p.angle = newAngle(c.Angle)
 	}
 	p.root = p.grow(c.Products, -1, last)
-	return p
+	return p, true
 }
 
 // grow appends the products and their decays to the nodes and returns their

@@ -25,6 +25,8 @@ type Worker struct {
 	// is the one in use.
 	events, points random.Stream
 	stream         *random.Stream
+	// left is the number of draws that the event may still take.
+	left int
 	// all holds the phase spaces of every channel: the reaction's, then those of
 	// the decays in the order of the nodes.
 	all [][]PhaseSpace
@@ -70,6 +72,7 @@ func (w *Worker) Fraction(channel int, i int64) float64 {
 	w.plan, w.spaces = g.plans[channel], w.all[channel]
 	w.stream = &w.points
 	w.stream.Start(i)
+	w.left = MaxAttempts
 	return w.fraction()
 }
 
@@ -79,9 +82,17 @@ func (w *Worker) Stats() Stats { return w.stats }
 // stopEvery is how many draws lie between two looks at Stop: some 50 microseconds.
 const stopEvery = 256
 
-// stopped looks at Stop after some draws of a loop.
-func (w *Worker) stopped(draw int) bool {
-	return draw%stopEvery == stopEvery-1 && w.Stop != nil && w.Stop()
+// again allows one more draw of the event: MaxAttempts in all its loops together, and
+// none after Stop.
+func (w *Worker) again() bool {
+	if w.left == 0 {
+		return false
+	}
+	w.left--
+	if w.left%stopEvery == 0 && w.Stop != nil && w.Stop() {
+		w.left = 0
+	}
+	return w.left > 0
 }
 
 // Event appends one event to truth. The order of its draws is frozen: channel, vertex,
@@ -91,6 +102,7 @@ func (w *Worker) Event(id int64, truth *event.Truth) {
 	g := w.generator
 	w.stream = &w.events
 	w.stream.Start(id)
+	w.left = MaxAttempts
 	channel := 0
 	if g.mixture != nil {
 		channel, _ = choose(g.mixture, w.stream.Uniform())
@@ -192,10 +204,7 @@ func (w *Worker) produce() float64 {
 // unweighted redraws until an event is accepted, and returns its weight.
 func (w *Worker) unweighted(fraction func() float64) float64 {
 	bound := w.plan.bound
-	for draw := range MaxAttempts {
-		if w.stopped(draw) {
-			return 0
-		}
+	for w.again() {
 		w.stats.Attempts++
 		f := fraction()
 		if u := w.stream.Uniform(); float64(u*bound) >= f {
@@ -215,10 +224,7 @@ func (w *Worker) unweighted(fraction func() float64) float64 {
 // energy draws the initial state of a given rate: redrawn below the threshold
 // and by the curve.
 func (w *Worker) energy() bool {
-	for draw := range MaxAttempts {
-		if w.stopped(draw) {
-			return false
-		}
+	for w.again() {
 		w.state = w.generator.source.draw(w.stream)
 		if !(w.state.m > w.plan.threshold) {
 			continue
@@ -344,10 +350,7 @@ func (w *Worker) decayOf(row int, g *group, ps *PhaseSpace) bool {
 // and then carried along.
 func (w *Worker) shapedDecay(row int, g *group, ps *PhaseSpace) bool {
 	m := w.masses[row]
-	for draw := range MaxAttempts {
-		if w.stopped(draw) {
-			return false
-		}
+	for w.again() {
 		if !w.redraw(g, ps, m) {
 			return false
 		}
@@ -374,10 +377,7 @@ func (w *Worker) redraw(g *group, ps *PhaseSpace, m float64) bool {
 		return ps.drawMasses(w.stream, m) > 0
 	}
 	ceiling := g.ceiling(w.plan.nodes, m)
-	for draw := range MaxAttempts {
-		if w.stopped(draw) {
-			return false
-		}
+	for w.again() {
 		weight := g.draw(w.stream, w.plan.nodes, m, w.masses, ps)
 		if w.stream.Uniform()*ceiling < weight {
 			return true

@@ -2,6 +2,7 @@ package api
 
 import (
 	"context"
+	"errors"
 	"strconv"
 
 	"google.golang.org/grpc"
@@ -193,17 +194,21 @@ type compiledGeneration struct {
 }
 
 // compile checks a generation as a whole. The error is a fault.List where the generation
-// is at fault. Preparing takes up to a second for large mixtures, within one turn.
+// is at fault.
 func (s *generationService) compile(ctx context.Context, m *kinegatev1.Generation) (*compiledGeneration, error) {
 	digest, err := canonical.Digest(m, s.deps.Table.Digest())
 	if err != nil {
 		return nil, fault.New(fault.Unsupported, "", "", "").Because(err.Error())
 	}
-	if err := s.turns.take(ctx); err != nil {
+	work := s.turns.begin(ctx)
+	if err := work.take(); err != nil {
 		return nil, err
 	}
-	defer s.turns.giveBack()
-	c, faults := compileGeneration(m, s.deps.Table)
+	defer work.end()
+	c, faults := compileGeneration(m, s.deps.Table, work.stop)
+	if err := ctx.Err(); err != nil {
+		return nil, err
+	}
 	if err := faults.Err(); err != nil {
 		return nil, err
 	}
@@ -211,7 +216,8 @@ func (s *generationService) compile(ctx context.Context, m *kinegatev1.Generatio
 	return c, nil
 }
 
-func compileGeneration(m *kinegatev1.Generation, table *particle.Table) (*compiledGeneration, fault.List) {
+// compileGeneration gives up, with whatever it found, when stop returns true.
+func compileGeneration(m *kinegatev1.Generation, table *particle.Table, stop func() bool) (*compiledGeneration, fault.List) {
 	form := newGenerationForm(m, table)
 	c := &compiledGeneration{outline: form.outline}
 	faults := form.faults
@@ -227,7 +233,10 @@ func compileGeneration(m *kinegatev1.Generation, table *particle.Table) (*compil
 	if len(faults) > 0 {
 		err = form.config.Validate() // no need to prepare anything
 	} else {
-		c.generator, err = generation.New(form.config)
+		c.generator, err = generation.NewUntil(form.config, stop)
+		if errors.Is(err, generation.ErrStopped) {
+			return nil, nil // the caller knows
+		}
 	}
 	faults = append(faults, beyond(faults, form.moved(faultsOf(err)))...)
 	if len(faults) > 0 {

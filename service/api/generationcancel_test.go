@@ -1,0 +1,77 @@
+package api
+
+import (
+	"context"
+	"errors"
+	"testing"
+	"time"
+
+	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+)
+
+// heavyMixture takes a second and more to prepare: many channels over a wide spectrum,
+// each with a density of all powers.
+func heavyMixture() *kinegatev1.Generation {
+	g := &kinegatev1.Generation{InitialState: &kinegatev1.GenerationInitialState{
+		Kind: &kinegatev1.GenerationInitialState_BeamOnTarget{BeamOnTarget: &kinegatev1.SpectrumOnTarget{
+			Beam: &kinegatev1.BeamSpectrum{Kind: &kinegatev1.BeamSpectrum_Backscatter{Backscatter: &kinegatev1.BackscatterSpectrum{
+				Beam:           &kinegatev1.BeamMotion{Value: &kinegatev1.BeamMotion_TotalEnergyGev{TotalEnergyGev: 8}},
+				LightEnergyGev: 3.5e-9, LowGev: 1.3,
+			}}},
+		}},
+	}}
+	polynomial := &kinegatev1.DalitzPolynomial{}
+	for x := range int32(9) {
+		for y := range int32(9) {
+			polynomial.Terms = append(polynomial.Terms, &kinegatev1.DalitzTerm{Coefficient: 1, PowerX: x, PowerY: y})
+		}
+	}
+	for range 64 {
+		g.Channels = append(g.Channels, &kinegatev1.GenerationChannel{
+			Reaction: "gamma p -> p omega, omega -> pi+ pi- pi0",
+			Energy:   &kinegatev1.EnergyDependence{Kind: &kinegatev1.EnergyDependence_PhaseSpace{PhaseSpace: &kinegatev1.PhaseSpaceRate{}}},
+			Decays: []*kinegatev1.DecayOptions{{
+				Product: "omega", Density: &kinegatev1.DecayOptions_DalitzPolynomial{DalitzPolynomial: polynomial},
+			}},
+		})
+	}
+	return g
+}
+
+// TestPreparationIsCancelled holds that work on a large mixture ends within 50 ms of its
+// caller, whenever that is.
+func TestPreparationIsCancelled(t *testing.T) {
+	s := newServices(t)
+	began := time.Now()
+	if _, err := s.generation.compile(t.Context(), heavyMixture()); err != nil {
+		t.Fatal(err)
+	}
+	whole := time.Since(began)
+	if whole < 100*time.Millisecond {
+		t.Fatalf("the mixture takes %v, too little to test anything", whole)
+	}
+	longest := time.Duration(0)
+	for _, share := range []float64{0.02, 0.1, 0.3, 0.5, 0.7, 0.85} {
+		ctx, cancel := context.WithCancel(t.Context())
+		var at time.Time
+		timer := time.AfterFunc(time.Duration(share*float64(whole)), func() {
+			at = time.Now()
+			cancel()
+		})
+		_, err := s.generation.compile(ctx, heavyMixture())
+		ended := time.Now()
+		if timer.Stop() {
+			cancel()
+			continue // it was faster this time
+		}
+		<-ctx.Done()
+		if !errors.Is(err, context.Canceled) && err != nil {
+			t.Errorf("%v", err)
+		}
+		longest = max(longest, ended.Sub(at))
+	}
+	t.Logf("FIGURE T1 preparing took %v, and ended at most %v after its caller", whole, longest)
+	if longest > 50*time.Millisecond {
+		t.Errorf("preparing ended %v after its caller", longest)
+	}
+}
