@@ -11,7 +11,7 @@ import (
 )
 
 func main() {
-	text, err := page("proto/kinegate/v1")
+	text, err := page(".")
 	if err != nil {
 		fmt.Fprintln(os.Stderr, "selectionpage:", err)
 		os.Exit(1)

@@ -3,6 +3,7 @@ package main
 import (
 	"errors"
 	"fmt"
+	"path/filepath"
 	"strings"
 
 	"google.golang.org/protobuf/reflect/protoreflect"
@@ -17,18 +18,23 @@ Made from the comments of the contract by ` + "`go run ./proto/selectionpage`" +
 A selection file is YAML: the fields of [Selection](#selection) by these names. A field that is
 left out is absent. Numbers are plain decimals in the unit that their name ends in; limits are
 half-open, [min, max). Unknown and doubled fields, anchors and tags are faults, and
-` + "`kinegate check FILE`" + ` names every fault with its line and column. The files in
-[testdata/selections](../testdata/selections) show one feature each.
+` + "`kinegate check FILE`" + ` names every fault with its line and column. Examples, each
+with what it shows at its head:
+
 `
 
-// page writes the page from the protos in a folder.
-func page(folder string) (string, error) {
+// page writes the page from the protos and the examples below the top folder.
+func page(top string) (string, error) {
 	p := writer{}
 	var err error
-	if p.comments, err = comments(folder); err != nil {
+	if p.comments, err = comments(filepath.Join(top, "proto", "kinegate", "v1")); err != nil {
 		return "", err
 	}
-	p.text.WriteString(head)
+	list, err := examples(filepath.Join(top, "testdata", "selections"))
+	if err != nil {
+		return "", err
+	}
+	p.text.WriteString(head + list)
 	seen := map[protoreflect.FullName]bool{}
 	queue := []protoreflect.Descriptor{(&kinegatev1.Selection{}).ProtoReflect().Descriptor()}
 	for len(queue) > 0 {

@@ -8,7 +8,7 @@ import (
 
 // TestPageIsCurrent compares the committed page with a fresh one.
 func TestPageIsCurrent(t *testing.T) {
-	fresh, err := page("../kinegate/v1")
+	fresh, err := page("../..")
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -17,7 +17,7 @@ func TestPageIsCurrent(t *testing.T) {
 		t.Fatal(err)
 	}
 	if fresh != string(committed) {
-		t.Error("proto/selection.md differs from the comments of the contract: run `make generate` and commit")
+		t.Error("proto/selection.md differs from the comments of the contract or the examples: run `make generate` and commit")
 	}
 	for _, want := range []string{
 		"\n## Selection\n", "| `prescale_count` | whole number |", "| `ROLE_VETO` |", "[Window](#window)", "| left out |",
