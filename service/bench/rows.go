@@ -17,6 +17,8 @@ func rows() []row {
 			name: "judge stream, server time over judging in process", limit: 1.5, aim: 1.3,
 			measure: benchmarkMetric("BenchmarkJudgeStream", "x-in-process"),
 		},
+		{name: "judging in process over a plain C++ loop (-O2), one core", measure: judgingAgainst("loop")},
+		{name: "  the same over numpy", measure: judgingAgainst("numpy")},
 		{
 			name: "p99 of verdicts beside bulk work over alone", limit: 3, aim: 1,
 			measure: benchmarkMetric("BenchmarkGateBesideBulk", "x-p99"),

@@ -1,6 +1,8 @@
 package main
 
 import (
+	"encoding/binary"
+	"math"
 	"math/rand/v2"
 	"os"
 	"os/exec"
@@ -204,4 +206,42 @@ func BenchmarkJudgeStream(b *testing.B) {
 	b.ReportMetric(float64(server)/events, "ns-server/event")
 	b.ReportMetric(float64(inProcess)/events, "ns-in-process/event")
 	b.ReportMetric(events/elapsed.Seconds(), "events/s")
+}
+
+// BenchmarkJudgeInProcess judges the events of BenchmarkJudgeStream in this process and
+// reports the least processor time of several passes. It leaves them in the file named by
+// KINEGATE_BENCH_EVENTS, as rows (E, theta, phi), for references in other languages.
+func BenchmarkJudgeInProcess(b *testing.B) {
+	const events, passes = 1000, 20
+	block := sixPhotons(events)
+	if file := os.Getenv("KINEGATE_BENCH_EVENTS"); file != "" {
+		var rows []byte
+		for i := range block.Class {
+			for _, column := range block.Coordinates.Columns[:3] {
+				rows = binary.LittleEndian.AppendUint64(rows, math.Float64bits(column[i]))
+			}
+		}
+		if err := os.WriteFile(file, rows, 0o600); err != nil {
+			b.Fatal(err)
+		}
+	}
+	worker := pairProgram(b).NewWorker(selection.NoEntries)
+	var out event.VerdictBlock
+	least := time.Duration(math.MaxInt64)
+	for b.Loop() {
+		begun := ownCPU(b)
+		for range passes {
+			worker.Reset(&out)
+			worker.Judge(block, 0, events, &out)
+		}
+		least = min(least, ownCPU(b)-begun)
+	}
+	accepted := 0
+	for i := range events {
+		if out.Gate.Get(i) {
+			accepted++
+		}
+	}
+	b.ReportMetric(float64(least)/(passes*events), "ns-cpu/event")
+	b.ReportMetric(float64(accepted), "accepted")
 }
