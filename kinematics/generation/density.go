@@ -77,7 +77,7 @@ func (d DalitzPolynomial) shaper([]Product) shaper {
 // since |X| and |Y| are below 2; a fine grid and two per cent do for the low
 // powers of real decays, and what passes counts as an overflow.
 func (d DalitzPolynomial) largest() float64 {
-	const grid = 200
+	const grid = 100
 	top := 0.0
 	for i := range grid + 1 {
 		for j := range grid + 1 - i {

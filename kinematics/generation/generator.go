@@ -22,6 +22,7 @@ type Generator struct {
 	source  source
 	plans   []*plan
 	mixture []float64 // running sums of the fractions
+	scan    *scan     // of PhaseSpaceRate
 }
 
 // New prepares a generator. It returns a fault.List with every fault of the
@@ -63,6 +64,7 @@ func NewUntil(config Config, stop func() bool) (*Generator, error) {
 			return nil, ErrStopped
 		}
 	}
+	g.scan = nil // it has served
 	if len(closed) > 0 {
 		return nil, closed
 	}
@@ -103,7 +105,13 @@ func (g *Generator) prepare(p *plan, stop func() bool) bool {
 		p.angle.analyse(g.config.Polarisation, p.channel.Angle.Asymmetry)
 	}
 	if p.channel.Energy.Kind == PhaseSpaceRate {
-		p.joint = g.jointCeiling(p, low, high, stop)
+		if g.scan == nil {
+			g.scan = newScan(g.source, stop)
+		}
+		if g.scan == nil {
+			return false
+		}
+		p.joint = g.scan.jointCeiling(p, low, high)
 	}
 	if g.config.Weighted && p.channel.Energy.Kind != PhaseSpaceRate && low < high {
 		p.norm = g.meanFractions(p, low, high, stop)
@@ -111,36 +119,52 @@ func (g *Generator) prepare(p *plan, stop func() bool) bool {
 	return !stop()
 }
 
-// jointCeiling bounds weight over flux for all energies: its largest value on a
-// grid of the energies that can occur, two per cent up.
-func (g *Generator) jointCeiling(p *plan, low, high float64, stop func() bool) float64 {
-	top := 0.0
-	scan := random.New(0, random.Bounds, 0)
-	const grid = 4000
-	for i := range grid {
-		if i%stopEvery == 0 && stop() {
-			return 0
+// scan is a sample of the energies that can occur, the same for every channel.
+type scan struct {
+	m, flux []float64
+	// best is the flux factor of the highest energy of another, smaller sample.
+	best float64
+}
+
+const scanned, scannedForEnd = 4000, 1000
+
+// newScan draws the sample, and returns nil when it was stopped.
+func newScan(from source, stop func() bool) *scan {
+	made := &scan{}
+	s := random.New(0, random.Bounds, 0)
+	for i := range scanned {
+		if i%16 == 0 && stop() { // some spectra take long
+			return nil
 		}
-		st := g.source.draw(&scan)
-		if st.m > low {
-			top = max(top, p.root.ceiling(p.nodes, st.m)/st.flux())
+		st := from.draw(&s)
+		made.m, made.flux = append(made.m, st.m), append(made.flux, st.flux())
+	}
+	s.Start(1)
+	var best state
+	for i := range scannedForEnd {
+		if i%16 == 0 && stop() {
+			return nil
+		}
+		if st := from.draw(&s); st.m > best.m {
+			best = st
+		}
+	}
+	made.best = best.flux()
+	return made
+}
+
+// jointCeiling bounds weight over flux for all energies: its largest value on a
+// sample of the energies that can occur, two per cent up.
+func (s *scan) jointCeiling(p *plan, low, high float64) float64 {
+	top := 0.0
+	for i, m := range s.m {
+		if m > low {
+			top = max(top, p.root.ceiling(p.nodes, m)/s.flux[i])
 		}
 	}
 	// The ends, which a sample misses: the flux factor of a beam is smooth, so
 	// that of the nearest sampled state serves for the weight at the end.
-	return 1.02 * max(top, g.endCeiling(p, high))
-}
-
-// endCeiling is the ceiling at the highest energy over its flux.
-func (g *Generator) endCeiling(p *plan, high float64) float64 {
-	scan := random.New(0, random.Bounds, 1)
-	var best state
-	for range 1000 {
-		if st := g.source.draw(&scan); st.m > best.m {
-			best = st
-		}
-	}
-	return p.root.ceiling(p.nodes, high) / best.flux()
+	return 1.02 * max(top, p.root.ceiling(p.nodes, high)/s.best)
 }
 
 // meanFractions tabulates the mean of weight over ceiling against sqrt(s), so

