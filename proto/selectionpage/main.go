@@ -12,9 +12,11 @@ import (
 
 func main() {
 	text, err := page(".")
+	if err == nil {
+		_, err = os.Stdout.WriteString(text)
+	}
 	if err != nil {
 		fmt.Fprintln(os.Stderr, "selectionpage:", err)
 		os.Exit(1)
 	}
-	fmt.Print(text)
 }

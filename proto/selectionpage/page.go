@@ -102,7 +102,7 @@ func (p *writer) message(d protoreflect.MessageDescriptor) []protoreflect.Descri
 
 // valueOf says in words what a field takes, and returns the message or enum it refers to.
 func valueOf(f protoreflect.FieldDescriptor) (text string, refers protoreflect.Descriptor) {
-	switch f.Kind() { //nolint:exhaustive // the kinds that files can hold; the rest shows its own name
+	switch f.Kind() {
 	case protoreflect.MessageKind:
 		refers = f.Message()
 	case protoreflect.EnumKind:
