@@ -20,8 +20,8 @@ import (
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 )
 
-// long reports whether tests that take minutes run in full: KINEGATE_LONG=1.
-func long() bool { return os.Getenv("KINEGATE_LONG") != "" }
+// long reports whether tests that take minutes run in full: LONG_TESTS=1.
+func long() bool { return os.Getenv("LONG_TESTS") != "" }
 
 // served is a server process on unix sockets of a folder, which can be killed and
 // started again at the same place.
@@ -79,7 +79,7 @@ func (s *served) client() *kinegate.Client {
 
 // TestHistoryAcrossKills kills the server with SIGKILL every 2 s: the stream is back
 // within 3 s each time, nothing is lost or doubled, and the bits are those of an
-// uninterrupted run. Three kills; five minutes of them with KINEGATE_LONG=1.
+// uninterrupted run. Three kills; five minutes of them with LONG_TESTS=1.
 func TestHistoryAcrossKills(t *testing.T) {
 	kills := int64(3)
 	if long() {

@@ -78,10 +78,10 @@ func (r *remote) filter(rule string) {
 // TestHistoryAcrossNetworkFaults loses packets between client and server: a line that
 // falls silent in one or both directions is found within 3.5 s, the stream is back within
 // 5 s of its healing, and whatever happens each event is answered exactly once, in order,
-// with its bits. With KINEGATE_LONG=1, as root.
+// with its bits. With LONG_TESTS=1, as root.
 func TestHistoryAcrossNetworkFaults(t *testing.T) {
 	if !long() {
-		t.Skip("long: set KINEGATE_LONG, or run .ci/long")
+		t.Skip("long: set LONG_TESTS, or run .ci/long")
 	}
 	const (
 		perBlock, sample = 100, 6000
