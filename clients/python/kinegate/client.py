@@ -237,6 +237,11 @@ class Client:
             selection: Anything that :meth:`selection` takes.
             event: Place of the event in the sample.
             most: Most assignments to list for a hypothesis, at most 1,000; 0 for 100.
+
+        >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv")
+        >>> why = client.explain(sample, "../../testdata/selections/dimuon.yaml", event=1)
+        >>> why.hypotheses["equal-plus"].accepted
+        False
         """
         return self.ask(self.selection(selection).explaining(events, event, most))
 

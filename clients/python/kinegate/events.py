@@ -224,8 +224,14 @@ class Events:
             **cut,
         )
 
-    def blocks(self, events_per_block: int = 1000) -> Iterator[Self]:
+    def blocks(
+        self, events_per_block: int = 1000, candidates_per_block: int | None = None
+    ) -> Iterator[Self]:
         """Cut the sample into blocks that share its columns.
+
+        Args:
+            events_per_block: Most events a block.
+            candidates_per_block: Most beam candidates a block, unless one event has more.
 
         >>> sample = Events.read_csv("../../testdata/open/dimuon_2011A.csv")
         >>> [len(block) for block in sample.blocks(1300)]
@@ -233,8 +239,16 @@ class Events:
         """
         if events_per_block < 1:
             raise ValueError(f"events_per_block: {events_per_block} is not above 0")
-        for start in range(0, len(self), events_per_block):
-            yield self.cut(start, start + events_per_block)
+        start = 0
+        while start < len(self):
+            stop = min(start + events_per_block, len(self))
+            if candidates_per_block is not None and self.beam is not None:
+                offsets = self.beam.offsets
+                most = int(offsets[start]) + candidates_per_block
+                stop = min(stop, int(np.searchsorted(offsets, most, side="right")) - 1)
+                stop = max(stop, start + 1)
+            yield self.cut(start, stop)
+            start = stop
 
     def to_message(self, sequence: int = 0) -> event_pb2.EventBlock:
         """Make the message of one block.

@@ -19,7 +19,13 @@ _SHOWN = 5  # assignments in a table
 
 @dataclass(frozen=True)
 class WindowExplanation:
-    """One window on one assignment, in the unit of its observable."""
+    """One window on one assignment, in the unit of its observable.
+
+    >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv")
+    >>> why = client.explain(sample, "../../testdata/selections/dimuon.yaml")
+    >>> why.hypotheses["Z"].best.windows[0]
+    WindowExplanation(path='condition.all_of[0].window', ... unit='GeV', value=89.95...)
+    """
 
     path: str
     """Place in the hypothesis, such as "condition.all_of[0].window"."""
@@ -39,7 +45,20 @@ class WindowExplanation:
 
 @dataclass(frozen=True)
 class Pull:
-    """One measured parameter of a fit."""
+    """One measured parameter of a fit.
+
+    >>> pions = {"name": "pions", "hypotheses": [{
+    ...     "name": "pi0", "reaction": "pi0 -> gamma gamma",
+    ...     "fit": {"masses": [
+    ...         {"products": ["gamma[0]", "gamma[1]"], "mass_gev": 0.1349768}]}}]}
+    >>> events = kinegate.Events.of(
+    ...     momentum_gev=[[0.31, 0.24]], theta_rad=[[0.30, 0.70]], phi_rad=[[0.0, 0.3]],
+    ...     classes=[kinegate.PHOTON, kinegate.PHOTON],
+    ...     covariance=np.tile([1e-4, 0, 0, 1e-4, 0, 1e-3], (2, 1)))
+    >>> pull = client.explain(events, pions).hypotheses["pi0"].best.pulls[0]
+    >>> pull.particle, pull.parameter, abs(pull.pull) < 5
+    ('gamma[0]', 'momentum', True)
+    """
 
     particle: str
     """Reference of the product, or "beam"."""
@@ -58,7 +77,24 @@ class Pull:
 
 
 class Assignment:
-    """One assignment of objects to products, with one beam candidate."""
+    """One assignment of objects to products, with one beam candidate.
+
+    >>> pions = {"name": "pions", "hypotheses": [{
+    ...     "name": "pi0", "reaction": "pi0 -> gamma gamma",
+    ...     "fit": {"masses": [
+    ...         {"products": ["gamma[0]", "gamma[1]"], "mass_gev": 0.1349768}]}}]}
+    >>> events = kinegate.Events.of(
+    ...     momentum_gev=[[0.31, 0.24]], theta_rad=[[0.30, 0.70]], phi_rad=[[0.0, 0.3]],
+    ...     classes=[kinegate.PHOTON, kinegate.PHOTON],
+    ...     covariance=np.tile([1e-4, 0, 0, 1e-4, 0, 1e-3], (2, 1)))
+    >>> best = client.explain(events, pions).hypotheses["pi0"].best
+    >>> best.objects, best.fit_status
+    ({'gamma[0]': 0, 'gamma[1]': 1}, 'CONVERGED')
+    >>> energy, *momentum = np.add(best.fitted["gamma[0]"], best.fitted["gamma[1]"])
+    >>> mass = np.sqrt(energy**2 - np.dot(momentum, momentum))
+    >>> bool(abs(mass / client.particle("pi0").mass - 1) < 1e-9)
+    True
+    """
 
     def __init__(
         self, message: explanation_pb2.AssignmentExplanation, products: Sequence[str]
@@ -144,7 +180,13 @@ class Assignment:
 
 
 class HypothesisExplanation:
-    """What one hypothesis made of the event."""
+    """What one hypothesis made of the event.
+
+    >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv")
+    >>> why = client.explain(sample, "../../testdata/selections/dimuon.yaml")
+    >>> why.hypotheses["dimuon"].accepted, why.hypotheses["equal-plus"].obstacle
+    (True, '...')
+    """
 
     def __init__(self, message: explanation_pb2.HypothesisExplanation) -> None:
         self.message = message
@@ -191,7 +233,13 @@ class HypothesisExplanation:
 
 
 class Explanation(Answer[explanation_pb2.ExplainVerdictResponse]):
-    """The verdict on one event laid open; it is that of a judge stream to the last bit."""
+    """The verdict on one event laid open; it is that of a judge stream to the last bit.
+
+    >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv")
+    >>> why = client.explain(sample, "../../testdata/selections/dimuon.yaml", event=7)
+    >>> why.gate, [name for name, h in why.hypotheses.items() if h.accepted]
+    (True, ['dimuon', ...])
+    """
 
     @property
     def digest(self) -> str:

@@ -16,7 +16,7 @@ import grpc
 
 from kinegate.errors import ServerError, StreamBroken
 from kinegate.selection import Hypothesis, Selection, entry_detail, outline
-from kinegate.v1 import selection_pb2
+from kinegate.v1 import info_pb2, selection_pb2
 from kinegate.verdicts import Verdicts
 
 if TYPE_CHECKING:
@@ -36,6 +36,8 @@ STUCK: Final = 30.0
 AHEAD: Final = 2
 """Blocks that are prepared beyond the credit, so that the stream never waits for them."""
 LATE: Final = ("accept", "reject")
+_EVENT_CANDIDATES: Final = 64  # most that an event may have
+_CANDIDATES_AN_EVENT: Final = 4
 
 
 @dataclass(frozen=True)
@@ -68,7 +70,16 @@ class Settings:
         from kinegate.events import Events  # noqa: PLC0415  # verdicts and events stay apart
 
         for part in [events] if isinstance(events, Events) else events:
-            yield from part.blocks(self.events_per_block)
+            yield from part.blocks(self.events_per_block, self.candidates_per_block)
+
+    @property
+    def candidates_per_block(self) -> int:
+        """Most beam candidates a block.
+
+        A server refuses a stream whose largest reply could pass the limit of the transport,
+        and every candidate can make an entry: so less than the largest block is promised.
+        """
+        return max(_EVENT_CANDIDATES, _CANDIDATES_AN_EVENT * self.events_per_block)
 
 
 @dataclass
@@ -148,6 +159,10 @@ class Protocol:
             entries=entry_detail(settings.entries),
             latency_budget_s=settings.latency_budget,
             follow=settings.follow,
+            limits=info_pb2.Limits(
+                block_event_count=settings.events_per_block,
+                block_candidate_count=settings.candidates_per_block,
+            ),
         )
         return selection_pb2.JudgeRequest(open=opening)
 

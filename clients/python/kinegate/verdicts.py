@@ -111,7 +111,20 @@ class Observable:
 
 @dataclass(frozen=True)
 class Fits:
-    """The fits of a hypothesis: one row for each of its entries."""
+    """The fits of a hypothesis: one row for each of its entries.
+
+    >>> pions = {"name": "pions", "hypotheses": [{
+    ...     "name": "pi0", "reaction": "pi0 -> gamma gamma",
+    ...     "fit": {"masses": [
+    ...         {"products": ["gamma[0]", "gamma[1]"], "mass_gev": 0.1349768}]}}]}
+    >>> events = kinegate.Events.of(
+    ...     momentum_gev=[[0.31, 0.24]], theta_rad=[[0.30, 0.70]], phi_rad=[[0.0, 0.3]],
+    ...     classes=[kinegate.PHOTON, kinegate.PHOTON],
+    ...     covariance=np.tile([1e-4, 0, 0, 1e-4, 0, 1e-3], (2, 1)))
+    >>> fits = client.judge_block(events, pions).fits("pi0")
+    >>> fits.degrees_of_freedom, fits.converged, bool(0 < fits.probability[0] < 1)
+    (array([1], dtype=int16), array([ True]), True)
+    """
 
     chi_square: NDArray[np.float64]
     """Chi-square; the minimum only where the fit converged."""

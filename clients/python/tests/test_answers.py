@@ -235,8 +235,6 @@ def test_both_clients_ask_every_question() -> None:
 
 # What a sound server never answers to a call that an example may make.
 WITHOUT_EXAMPLE = {"Cancelled", "Internal", "PermissionDenied", "Unauthenticated", "Unimplemented"}
-WITHOUT_EXAMPLE |= {"Assignment", "Explanation", "Fits", "HypothesisExplanation", "Pull"}
-WITHOUT_EXAMPLE |= {"WindowExplanation"}
 
 
 def test_every_public_name_has_an_example_that_is_run() -> None:

@@ -174,3 +174,21 @@ def test_csv_faults(tmp_path: Path) -> None:
     path.write_text("px1,py1\n1,2\n")
     with pytest.raises(ValueError, match="no column"):
         Events.read_csv(path)
+
+
+def test_blocks_keep_to_a_number_of_beam_candidates() -> None:
+    counts = np.array([1, 5, 0, 3, 9, 1, 1])
+    offsets = np.concatenate([[0], np.cumsum(counts)]).astype(np.int32)
+    column = np.arange(offsets[-1], dtype=float)
+    events = Events.of(
+        momentum_gev=np.ones((7, 1)),
+        theta_rad=np.ones((7, 1)),
+        phi_rad=np.ones((7, 1)),
+        classes=[kinegate.PHOTON],
+        beam=kinegate.BeamCandidates(offsets, column, column, column),
+    )
+    blocks = list(events.blocks(4, candidates_per_block=8))
+    assert [len(b) for b in blocks] == [3, 1, 1, 2]
+    assert np.concatenate([b.ids for b in blocks]).tolist() == list(range(7))
+    energies = [b.beam.energy_gev for b in blocks if b.beam is not None]
+    assert (np.concatenate(energies) == column).all()

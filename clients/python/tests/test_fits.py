@@ -9,8 +9,10 @@ import kinegate
 from kinegate import Verdicts
 from kinegate.selection import Hypothesis
 from kinegate.v1 import explanation_pb2, fit_pb2, verdict_pb2
+from tests.test_generation import GENERATION
 
 PLAIN = Hypothesis("plain", "-> mu+ mu-", ["mu+", "mu-"], ["M"])
+PAIR = ["gamma[0]", "gamma[1]"]
 FITTED = Hypothesis("fitted", "pi0 -> gamma gamma", ["gamma[0]", "gamma[1]"], ["M"], 1)
 
 
@@ -166,6 +168,48 @@ def test_explanation_shows_itself() -> None:
     for part in ("event 17: judged, accepted", "gamma[0]=2, gamma[1]=0", "+1.20", "no positive"):
         assert part in text
     assert why._repr_html_().count("<table>") == len(why.tables())
+
+
+def test_explanations_are_those_of_the_stream(client: kinegate.Client) -> None:
+    sample = client.generate(GENERATION, 300).read().events
+    assert sample is not None
+    selection = client.selection(
+        {
+            "name": "photons",
+            "hypotheses": [
+                {
+                    "name": "eta",
+                    "reaction": "eta -> gamma gamma",
+                    "extra_objects": {"any": {}},
+                    "fit": {"masses": [{"products": PAIR, "mass_gev": 0.547862}]},
+                    "condition": {"window": {"fit_probability": {"min": 0.05}}},
+                    "record": [{"name": "M", "invariant_mass": {"products": PAIR}}],
+                    "record_uncertainties": True,
+                }
+            ],
+        }
+    )
+    assert selection.hypotheses["eta"].degrees_of_freedom == 1
+    whole = Verdicts.concatenate([v for _, v in client.judge(sample, selection, entries="all")])
+    fits, mass = whole.fits("eta"), whole.observable("eta", "M")
+    assert fits.converged.mean() > 0.9
+    assert mass.uncertainties is not None
+    by_event = dict(zip(fits.events.tolist(), range(len(fits.events)), strict=True))
+    compared = 0
+    for event in range(0, len(sample), 7):
+        why = client.explain(sample, selection, event=event).hypotheses["eta"]
+        assert why.accepted == whole.accepted["eta"][event]
+        if event not in by_event:
+            assert why.best is None
+            continue
+        row, best = by_event[event], why.best
+        assert best is not None
+        assert best.probability == fits.probability[row]
+        recorded = next(w for w in best.windows if w.path == "record[0]")
+        assert recorded.value == mass.values[row]
+        assert recorded.uncertainty == mass.uncertainties[row]
+        compared += 1
+    assert compared > 10
 
 
 def test_an_event_must_be_there(client: kinegate.Client) -> None:
