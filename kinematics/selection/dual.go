@@ -14,7 +14,7 @@ func (a dual) add(b dual) dual { return dual{a.v + b.v, a.d + b.d} }
 func (a dual) sub(b dual) dual { return dual{a.v - b.v, a.d - b.d} }
 
 func (a dual) mul(b dual) dual {
-	return dual{a.v * b.v, float64(a.v*b.d) + float64(a.d*b.v)}
+	return dual{float64(a.v * b.v), float64(a.v*b.d) + float64(a.d*b.v)}
 }
 
 func (a dual) div(b dual) dual {

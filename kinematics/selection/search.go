@@ -149,7 +149,7 @@ func (w *Worker) place(k int) bool {
 		w.left-- // a way that ends here is work too
 	}
 	for ; choices != 0; choices &= choices - 1 {
-		if w.left <= 0 || w.interrupted() {
+		if w.left <= 0 || w.interrupted(1) {
 			s.exhausted = true
 			return false
 		}
@@ -172,14 +172,20 @@ func (w *Worker) place(k int) bool {
 	return true
 }
 
-// askEvery is the number of steps between two questions to Stop, a power of two.
-const askEvery = 256
+// askEvery is the number of steps of the search between two questions to Stop, and
+// stepsOfFit what a fit counts as.
+const (
+	askEvery   = 256
+	stepsOfFit = 64
+)
 
-// interrupted counts a step of the search and reports whether Stop ends the judging.
-func (w *Worker) interrupted() bool {
-	w.work++
-	if w.work%askEvery == 0 && w.Stop != nil && w.Stop() {
-		w.stopped = true
+// interrupted counts steps of the search and reports whether Stop ends the judging.
+func (w *Worker) interrupted(steps uint) bool {
+	if w.work += steps; w.work >= askEvery {
+		w.work = 0
+		if w.Stop != nil && w.Stop() {
+			w.stopped = true
+		}
 	}
 	return w.stopped
 }
@@ -212,7 +218,7 @@ func (w *Worker) complete() bool {
 			continue
 		}
 		w.enter(c)
-		if h.fit != nil && w.interrupted() {
+		if h.fit != nil && w.interrupted(stepsOfFit) {
 			s.exhausted = true
 			return false
 		}
