@@ -40,11 +40,12 @@ const (
 	keepaliveTimeout = 10 * time.Second
 )
 
-// serviceConfig balances over all addresses of a name, gives every unary call a
-// deadline and tries again where the server answers UNAVAILABLE. The judge stream
-// is kept out of the retry policy: a transport that replays its frames would judge
+// ServiceConfig is how Dial makes calls, in gRPC's own form for those who make their
+// connections themselves. It balances over all addresses of a name, gives every unary call
+// a deadline, waits for a server, and tries again where one answers UNAVAILABLE. The judge
+// stream is kept out of the retry policy: a transport that replays its frames would judge
 // events twice. Streams have no deadline here.
-const serviceConfig = `{
+const ServiceConfig = `{
   "loadBalancingConfig": [{"round_robin": {}}],
   "retryThrottling": {"maxTokens": 10, "tokenRatio": 0.1},
   "methodConfig": [
@@ -110,7 +111,7 @@ func Dial(address string, options Options) (*Client, error) {
 	}
 	dial := append([]grpc.DialOption{
 		grpc.WithTransportCredentials(creds),
-		grpc.WithDefaultServiceConfig(serviceConfig),
+		grpc.WithDefaultServiceConfig(ServiceConfig),
 		grpc.WithDefaultCallOptions(
 			grpc.MaxCallRecvMsgSize(maxMessageBytes),
 			grpc.MaxCallSendMsgSize(maxMessageBytes),
