@@ -49,7 +49,15 @@ func TestConformingCalls(t *testing.T) {
 
 func writeCall(t *testing.T, c *conformance.Call, reply []byte) {
 	t.Helper()
-	c.Reply = reply
+	var members any
+	if err := json.Unmarshal(reply, &members); err != nil {
+		t.Fatal(err)
+	}
+	unpin(members)
+	var err error
+	if c.Reply, err = json.Marshal(members); err != nil {
+		t.Fatal(err)
+	}
 	text, err := json.MarshalIndent(c, "", "  ")
 	if err != nil {
 		t.Fatal(err)
@@ -57,6 +65,24 @@ func writeCall(t *testing.T, c *conformance.Call, reply []byte) {
 	name := filepath.Join(conformanceFolder, "calls", c.Name+".json")
 	if err := os.WriteFile(name, append(text, '\n'), 0o644); err != nil { //nolint:gosec // for everybody to read
 		t.Fatal(err)
+	}
+}
+
+// unpin leaves out what changes with versions and not with the contract.
+func unpin(members any) {
+	switch x := members.(type) {
+	case map[string]any:
+		for name, value := range x {
+			switch name {
+			case "selection_digest", "table_version", "largest_reply_byte_count":
+				delete(x, name)
+			}
+			unpin(value)
+		}
+	case []any:
+		for _, value := range x {
+			unpin(value)
+		}
 	}
 }
 
