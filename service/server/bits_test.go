@@ -37,19 +37,71 @@ func TestBitsDoNotDependOnBlocksOrWorkers(t *testing.T) {
 	}
 }
 
+// TestBitsOfFits does the same with constrained fits, and breaks the connection meanwhile.
+func TestBitsOfFits(t *testing.T) {
+	before := runtime.GOMAXPROCS(0)
+	defer runtime.GOMAXPROCS(before)
+	for _, workers := range []int{1, 4} {
+		runtime.GOMAXPROCS(workers)
+		r := start(t)
+		for _, perBlock := range []int{1, 7, 1000} {
+			t.Run(fmt.Sprintf("%d workers, blocks of %d", workers, perBlock), func(t *testing.T) {
+				events := min(3000, 200*perBlock)
+				runtime.GOMAXPROCS(1)
+				c, err := history.Learn(t.Context(), r.client(t), history.FittedEntries(), history.Measured, events)
+				if err != nil {
+					t.Fatal(err)
+				}
+				runtime.GOMAXPROCS(workers)
+				l := r.gateLine()
+				fits := 0
+				verify(t, c, history.Run{
+					Client: r.client(t, l.through), Open: history.FittedEntries(), Sample: history.Measured, Events: events, PerBlock: perBlock,
+					Before: func(from int) {
+						if from == events/2/perBlock*perBlock {
+							l.cut()
+						}
+					},
+					Answered: func(v *kinegatev1.VerdictBlock) {
+						for _, status := range v.GetEntries().GetFits().GetStatuses() {
+							if kinegatev1.FitStatus(status) == kinegatev1.FitStatus_FIT_STATUS_CONVERGED {
+								fits++
+							}
+						}
+					},
+				})
+				if fits < events/20 {
+					t.Errorf("only %d fits of %d events converged", fits, events)
+				}
+			})
+		}
+	}
+}
+
 var update = flag.Bool("update", false, "rewrite testdata/golden/verdicts.txt, after the version of the numerics was raised")
 
-// TestGoldenVerdicts compares what a stream says about the sample with a digest that is
-// the same on every architecture.
+// TestGoldenVerdicts compares what streams say about the samples, without and with fits,
+// with digests that are the same on every architecture.
 func TestGoldenVerdicts(t *testing.T) {
-	const (
-		file   = "testdata/golden/verdicts.txt"
-		events = 3000
-	)
+	const file = "testdata/golden/verdicts.txt"
 	r := start(t)
+	got := digest(t, r, history.AllEntries(), history.Photons) + digest(t, r, history.FittedEntries(), history.Measured)
+	if *update {
+		writeFile(t, file, []byte(got))
+	}
+	want, err := os.ReadFile(file)
+	if err != nil || got != string(want) {
+		t.Errorf("got %swant %s%v", got, want, err)
+	}
+}
+
+// digest is a line on the verdicts about a sample.
+func digest(t *testing.T, r *running, open *kinegatev1.JudgeOpen, sample history.Sample) string {
+	t.Helper()
+	const events = 3000
 	sum, accepted := sha256.New(), 0
 	verify(t, history.New(0), history.Run{
-		Client: r.client(t), Open: history.AllEntries(), Events: events, PerBlock: 500,
+		Client: r.client(t), Open: open, Sample: sample, Events: events, PerBlock: 500,
 		Answered: func(v *kinegatev1.VerdictBlock) {
 			records, err := history.Records(v, int(v.GetEventCount()))
 			if err != nil {
@@ -65,17 +117,11 @@ func TestGoldenVerdicts(t *testing.T) {
 			}
 		},
 	})
-	got := fmt.Sprintf("numerics %d, %d events, %d accepted, sha256 %x\n", kinematics.NumericsVersion, events, accepted, sum.Sum(nil))
 	if accepted < events/100 || accepted > events/2 {
 		t.Errorf("the sample tells little: %d accepted", accepted)
 	}
-	if *update {
-		writeFile(t, file, []byte(got))
-	}
-	want, err := os.ReadFile(file)
-	if err != nil || got != string(want) {
-		t.Errorf("got %swant %s%v", got, want, err)
-	}
+	return fmt.Sprintf("%s: numerics %d, %d events, %d accepted, sha256 %x\n",
+		open.GetSelection().GetInline().GetName(), kinematics.NumericsVersion, events, accepted, sum.Sum(nil))
 }
 
 // TestUnaryAndStreamAgree: JudgeBlock says what the stream says.

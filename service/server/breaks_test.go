@@ -136,6 +136,56 @@ func TestHistoryAcrossCuts(t *testing.T) {
 	}
 }
 
+// TestHistoryAcrossCancels ends stream after stream in the middle, with blocks on their
+// way, and goes on each time with a new one from the first block without a verdict.
+func TestHistoryAcrossCancels(t *testing.T) {
+	r := start(t)
+	const events, perBlock, perStream = 10000, 100, 7
+	c := learned(t, r, history.AllEntries(), events)
+	client := r.client(t)
+	streams := 0
+	for next := int64(0); next < events/perBlock; streams++ {
+		ctx, cancel := context.WithCancel(t.Context())
+		open := history.AllEntries()
+		open.FirstSequence = next
+		stream, err := client.Judge(ctx, open, kinegate.JudgeOptions{})
+		if err != nil {
+			t.Fatal(err)
+		}
+		sent := make(chan struct{})
+		go func() {
+			defer close(sent)
+			for i := next; i < events/perBlock; i++ {
+				block := history.Photons(int(i)*perBlock, perBlock)
+				block.Sequence = i
+				c.Sent(block)
+				if stream.Send(block) != nil {
+					return
+				}
+			}
+		}()
+		for taken := 0; ; taken++ {
+			if taken == perStream {
+				cancel()
+			}
+			v, err := stream.Recv()
+			if err != nil {
+				break
+			}
+			c.Answered(v)
+			if next = v.GetSequence() + 1; next == events/perBlock {
+				break
+			}
+		}
+		cancel()
+		stream.Close()
+		<-sent
+	}
+	if faults := c.Faults(true); len(faults) > 0 || streams < 5 {
+		t.Errorf("%d streams: %v", streams, faults)
+	}
+}
+
 // TestSilenceIsFoundInTime: a peer that loses everything without a sign is found within
 // 3.5 s, and the stream goes on over a connection of its own.
 func TestSilenceIsFoundInTime(t *testing.T) {

@@ -244,8 +244,25 @@ func (e *entries) append(b []byte, i int) []byte {
 		b = append(b, slot(e.GetAssignmentsTried(), k, sizeInt32)...)
 		b = part(b, e.GetAssignments(), e.assignments[k], e.assignments[k+1], sizeInt16)
 		b = part(b, e.GetObservables(), e.observables[k], e.observables[k+1], sizeFloat64)
+		if e.ObservableUncertainties != nil {
+			b = part(append(b, "uncertainties"...), e.GetObservableUncertainties(), e.observables[k], e.observables[k+1], sizeFloat64)
+		}
+		b = fit(b, e.GetFits(), k)
 	}
 	return b
+}
+
+// fit adds the fit of entry k, if there are any.
+func fit(b []byte, fits *kinegatev1.FitColumns, k int) []byte {
+	if fits == nil {
+		return b
+	}
+	b = append(b, "fit"...)
+	b = append(b, slot(fits.GetStatuses(), k, 1)...)
+	b = append(b, slot(fits.GetChiSquares(), k, sizeFloat64)...)
+	b = append(b, slot(fits.GetDegreesOfFreedom(), k, sizeInt16)...)
+	b = append(b, slot(fits.GetProbabilities(), k, sizeFloat64)...)
+	return append(b, slot(fits.GetIterations(), k, sizeInt16)...)
 }
 
 // part adds a range of a column behind its length.

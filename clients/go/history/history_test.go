@@ -23,7 +23,11 @@ func run(blocks int) (events []*kinegatev1.EventBlock, verdicts []*kinegatev1.Ve
 				BeamRows: column.Int16([]int16{-1, -1}), Weights: column.Float64([]float64{1, 1}), Statuses: []byte{1, 2},
 				AssignmentsTried: column.Int32([]int32{1, 1}), AssignmentOffsets: column.Int32([]int32{0, 2, 4}),
 				Assignments: column.Int16([]int16{0, 1, 1, 0}), ObservableOffsets: column.Int32([]int32{0, 1, 2}),
-				Observables: column.Float64([]float64{0.25, float64(i)}),
+				Observables: column.Float64([]float64{0.25, float64(i)}), ObservableUncertainties: column.Float64([]float64{0.5, 0.125}),
+				Fits: &kinegatev1.FitColumns{
+					Statuses: []byte{1, 1}, ChiSquares: column.Float64([]float64{3, float64(i)}), DegreesOfFreedom: column.Int16([]int16{1, 1}),
+					Probabilities: column.Float64([]float64{0.5, 0.75}), Iterations: column.Int16([]int16{3, 4}),
+				},
 			},
 		})
 	}
@@ -74,6 +78,9 @@ func TestBreachesAreFound(t *testing.T) {
 		"hypothesis":       func(v blocks) blocks { v[2].Hypotheses[0].Accepted[0] ^= 1; return v },
 		"best":             func(v blocks) blocks { v[2].Groups[0].Best[0] ^= 1; return v },
 		"last bit":         func(v blocks) blocks { v[2].Entries.Observables[8] ^= 1; return v },
+		"uncertainty":      func(v blocks) blocks { v[2].Entries.ObservableUncertainties[8] ^= 1; return v },
+		"chi-square":       func(v blocks) blocks { v[2].Entries.Fits.ChiSquares[8] ^= 1; return v },
+		"fit":              func(v blocks) blocks { v[2].Entries.Fits.Statuses[1] ^= 3; return v },
 		"assignment":       func(v blocks) blocks { v[2].Entries.Assignments[0] ^= 1; return v },
 		"rejected":         func(v blocks) blocks { v[2].Rejected = &kinegatev1.Rejection{Reason: "BLOCK_INVALID"}; return v },
 	} {

@@ -10,9 +10,20 @@ import (
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 )
 
-// LearnSample judges the first events of the sample over one stream, in blocks of a
-// size that no test uses, and returns a checker that knows them.
+// Sample makes events [from, from+count) of a sample, each the same in whatever block it
+// comes.
+type Sample func(from, count int) *kinegatev1.EventBlock
+
+// LearnSample judges the first events of Photons over one stream, in blocks of a size that
+// no test uses, and returns a checker that knows them.
 func LearnSample(ctx context.Context, client *kinegate.Client, open *kinegatev1.JudgeOpen, events int) (*Checker, error) {
+	return Learn(ctx, client, open, Photons, events)
+}
+
+// Learn is LearnSample of any sample.
+func Learn(
+	ctx context.Context, client *kinegate.Client, open *kinegatev1.JudgeOpen, sample Sample, events int,
+) (*Checker, error) {
 	const perBlock = 311
 	c := New(open.GetFirstSequence())
 	stream, err := client.Judge(ctx, open, kinegate.JudgeOptions{})
@@ -21,7 +32,7 @@ func LearnSample(ctx context.Context, client *kinegate.Client, open *kinegatev1.
 	}
 	defer stream.Close()
 	for from := 0; from < events; from += perBlock {
-		block := Photons(from, min(perBlock, events-from))
+		block := sample(from, min(perBlock, events-from))
 		if err := stream.Send(block); err != nil {
 			return nil, err
 		}
@@ -42,6 +53,8 @@ type Run struct {
 	Client  *kinegate.Client
 	Open    *kinegatev1.JudgeOpen
 	Options kinegate.JudgeOptions
+	// Sample is what is sent; Photons if nil.
+	Sample Sample
 	// Events is how many events to send, PerBlock in a block.
 	Events, PerBlock int
 	// Before is called before each block, with its first event. Optional.
@@ -80,11 +93,15 @@ func (c *Checker) Check(ctx context.Context, r Run) error {
 }
 
 func (c *Checker) send(stream *kinegate.JudgeStream, r *Run) error {
+	sample := r.Sample
+	if sample == nil {
+		sample = Photons
+	}
 	for from := 0; from < r.Events; from += r.PerBlock {
 		if r.Before != nil {
 			r.Before(from)
 		}
-		block := Photons(from, min(r.PerBlock, r.Events-from))
+		block := sample(from, min(r.PerBlock, r.Events-from))
 		block.Sequence = r.Open.GetFirstSequence() + int64(from/r.PerBlock)
 		c.Sent(block)
 		if err := stream.Send(block); err != nil {

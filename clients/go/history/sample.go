@@ -80,3 +80,34 @@ func AllEntries() *kinegatev1.JudgeOpen {
 		Limits:    &kinegatev1.Limits{BlockEventCount: 4096, BlockObjectCount: 32768},
 	}
 }
+
+// Measured are the events of Photons with the covariances of a calorimeter: 3 % of the
+// energy, 10 mrad in theta and phi.
+func Measured(from, count int) *kinegatev1.EventBlock {
+	const energy, angle = 0.03, 0.01
+	block := Photons(from, count)
+	energies, _ := column.Float64s(block.GetMomentumAngles().GetMomentumGev()) // written above
+	var packed []float64
+	for _, e := range energies {
+		packed = append(packed, float64(energy*e)*float64(energy*e), 0, 0, angle*angle, 0, angle*angle)
+	}
+	block.Covariance = &kinegatev1.CovarianceColumn{Elements: column.Float64(packed)}
+	return block
+}
+
+// FittedEntries opens a stream that fits the masses of pions to the measured sample, and
+// tells everything.
+func FittedEntries() *kinegatev1.JudgeOpen {
+	open := AllEntries()
+	open.Limits = &kinegatev1.Limits{BlockEventCount: 2000, BlockObjectCount: 12000}
+	s := open.GetSelection().GetInline()
+	s.Name = "fitted-photons"
+	s.Hypotheses[0].Fit = &kinegatev1.Fit{Masses: []*kinegatev1.FitMass{{
+		Products: []string{"gamma[0]", "gamma[1]"}, MassGev: new(0.1349768),
+	}}}
+	s.Hypotheses[1].Fit = &kinegatev1.Fit{Masses: []*kinegatev1.FitMass{{Products: []string{"pi0[0]"}}, {Products: []string{"pi0[1]"}}}}
+	for _, h := range s.GetHypotheses() {
+		h.RecordUncertainties = true
+	}
+	return open
+}
