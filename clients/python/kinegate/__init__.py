@@ -58,6 +58,7 @@ from kinegate.generation import Generated, GenerationCheck, GenerationLike, Trut
 from kinegate.generationstream import AsyncGenerationStream, GenerationStream
 from kinegate.info import Info
 from kinegate.initial import Beams
+from kinegate.judge import JudgeSettings
 from kinegate.motion import Motion
 from kinegate.openchannels import OpenChannel, OpenChannels
 from kinegate.paircreation import FieldPair, PairCreation
@@ -125,6 +126,7 @@ __all__ = [
     "Info",
     "Internal",
     "InvalidArgument",
+    "JudgeSettings",
     "JudgeStream",
     "KinegateError",
     "Limits",

@@ -10,7 +10,7 @@ import weakref
 from collections import deque
 from collections.abc import AsyncIterable
 from pathlib import Path
-from typing import TYPE_CHECKING, Any, Concatenate, ParamSpec, Self, TypeVar
+from typing import TYPE_CHECKING, Any, Concatenate, ParamSpec, Self, TypeVar, Unpack
 
 import grpc
 
@@ -20,7 +20,7 @@ from kinegate.client import described, target
 from kinegate.events import Events
 from kinegate.generation import GenerationLike, sample
 from kinegate.generationstream import AsyncGenerationStream
-from kinegate.judge import Protocol, Settings, pause
+from kinegate.judge import JudgeSettings, Protocol, Settings, pause
 from kinegate.progress import Bar
 from kinegate.selection import Selection, SelectionLike
 from kinegate.stubs import Stubs
@@ -198,14 +198,14 @@ class AsyncClient:
         self,
         events: Events | Iterable[Events] | AsyncIterable[Events],
         selection: SelectionLike,
-        **settings: Any,
+        **settings: Unpack[JudgeSettings],
     ) -> AsyncJudgeStream:
         """Judge events through a stream: `async for block, verdict in client.judge(...)`.
 
         Args:
             events: A sample, or an iterable or asynchronous iterable of blocks.
             selection: Anything that :meth:`selection` takes.
-            settings: As for :meth:`kinegate.Client.judge`.
+            settings: Any of :class:`kinegate.JudgeSettings`.
         """
         self._guard.check()
         stream = AsyncJudgeStream(self, events, selection, settings)
@@ -232,7 +232,7 @@ class AsyncJudgeStream:
         client: AsyncClient,
         events: Events | Iterable[Events] | AsyncIterable[Events],
         selection: SelectionLike,
-        settings: dict[str, Any],
+        settings: JudgeSettings,
     ) -> None:
         self._client = client
         self._events = events

@@ -7,7 +7,7 @@ import functools
 import inspect
 import weakref
 from pathlib import Path
-from typing import TYPE_CHECKING, Any, Concatenate, ParamSpec, Self, TypeVar
+from typing import TYPE_CHECKING, Any, Concatenate, ParamSpec, Self, TypeVar, Unpack
 
 import grpc
 
@@ -15,7 +15,7 @@ from kinegate import errors, questions
 from kinegate.bound import bound
 from kinegate.generation import GenerationLike, sample
 from kinegate.generationstream import GenerationStream
-from kinegate.judge import Settings
+from kinegate.judge import JudgeSettings, Settings
 from kinegate.selection import Selection, SelectionLike
 from kinegate.stream import JudgeStream
 from kinegate.stubs import Stubs
@@ -285,19 +285,11 @@ class Client:
 
         return GenerationStream(wanted, call, self._target.address, patience, progress=progress)
 
-    def judge(  # noqa: PLR0913  # each is a choice of its own
+    def judge(
         self,
         events: Events | Iterable[Events],
         selection: SelectionLike,
-        *,
-        entries: str = "accepted",
-        events_per_block: int = 1000,
-        latency_budget: float | None = None,
-        late: str = "accept",
-        follow: bool = False,
-        first_sequence: int = 0,
-        patience: float = 60.0,
-        progress: bool = False,
+        **settings: Unpack[JudgeSettings],
     ) -> JudgeStream:
         """Judge events through a stream; iterate over it for (block, verdict) pairs.
 
@@ -310,14 +302,8 @@ class Client:
             events: A sample, which is cut into blocks, or an iterable of blocks that may
                 go on for ever. It is read in a thread of its own.
             selection: Anything that :meth:`selection` takes.
-            entries: Which entries to return: "none", "accepted" or "all".
-            events_per_block: Events a block, at most 4,096.
-            latency_budget: Time in second after which a block's events count as late.
-            late: What late events are: "accept" or "reject". They are marked EXPIRED.
-            follow: Let a reloaded selection of the same name take over.
-            first_sequence: Number of the first block.
-            patience: Seconds without an answer after which a broken stream is given up.
-            progress: Show a bar on standard error.
+            settings: Any of :class:`kinegate.JudgeSettings`: `entries`, `events_per_block`,
+                `latency_budget`, `late`, `follow`, `first_sequence`, `patience`, `progress`.
 
         >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv")
         >>> with client.judge(sample, "../../testdata/selections/dimuon.yaml") as stream:
@@ -329,18 +315,7 @@ class Client:
         """
         self._guard.check()
         chosen = self.selection(selection)
-        settings = Settings(
-            chosen,
-            entries=entries,
-            events_per_block=events_per_block,
-            latency_budget=latency_budget,
-            late=late,
-            follow=follow,
-            first_sequence=first_sequence,
-            patience=patience,
-            progress=progress,
-        )
-        stream = JudgeStream(self._target, events, settings)
+        stream = JudgeStream(self._target, events, Settings(chosen, **settings))
         self._streams.add(stream)
         return stream
 

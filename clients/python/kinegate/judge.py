@@ -10,7 +10,7 @@ from __future__ import annotations
 
 from collections import deque
 from dataclasses import dataclass
-from typing import TYPE_CHECKING, Final
+from typing import TYPE_CHECKING, Final, TypedDict
 
 import grpc
 
@@ -25,7 +25,7 @@ if TYPE_CHECKING:
     from kinegate.events import Events
     from kinegate.v1 import event_pb2, verdict_pb2
 
-__all__ = ["Protocol", "Settings"]
+__all__ = ["JudgeSettings", "Protocol", "Settings"]
 
 HEARTBEAT: Final = 1.0
 """Silence in second after which a side says that it is alive."""
@@ -38,6 +38,33 @@ AHEAD: Final = 2
 LATE: Final = ("accept", "reject")
 _EVENT_CANDIDATES: Final = 64  # most that an event may have
 _CANDIDATES_AN_EVENT: Final = 4
+
+
+class JudgeSettings(TypedDict, total=False):
+    """The keyword arguments of a judge stream.
+
+    >>> settings: kinegate.JudgeSettings = {"entries": "none", "events_per_block": 4096}
+    >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv")
+    >>> len(list(client.judge(sample, "../../testdata/selections/dimuon.yaml", **settings)))
+    1
+    """
+
+    entries: str
+    """Which entries to return: "none", "accepted" or "all"."""
+    events_per_block: int
+    """Events a block, at most 4,096."""
+    latency_budget: float | None
+    """Time in second after which a block's events count as late."""
+    late: str
+    """What late events are: "accept" or "reject". They are marked EXPIRED."""
+    follow: bool
+    """Let a reloaded selection of the same name take over."""
+    first_sequence: int
+    """Number of the first block."""
+    patience: float
+    """Seconds without an answer after which a broken stream is given up."""
+    progress: bool
+    """Show a bar on standard error."""
 
 
 @dataclass(frozen=True)
