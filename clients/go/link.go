@@ -29,8 +29,10 @@ type link struct {
 	ctx    context.Context //nolint:containedctx // the life of the rpc
 	hangUp func()
 
-	// sending serialises frames: blocks and heartbeats come from two goroutines.
+	// sending serialises frames: blocks and heartbeats come from two goroutines. Nothing is
+	// sent after the end.
 	sending sync.Mutex
+	ended   bool
 	// Times of frames, in ns of the monotonic clock since start.
 	start              time.Time
 	lastSent, lastSeen atomic.Int64
@@ -118,11 +120,22 @@ func (l *link) close() {
 func (l *link) send(request *kinegatev1.JudgeRequest) error {
 	l.sending.Lock()
 	defer l.sending.Unlock()
+	if l.ended {
+		return nil // a heartbeat: the server waits for none any more
+	}
 	l.lastSent.Store(l.now())
 	if err := l.stream.Send(request); err != nil && !errors.Is(err, io.EOF) {
 		return err
 	}
 	return nil
+}
+
+// end says that no more will be sent.
+func (l *link) end() {
+	l.sending.Lock()
+	defer l.sending.Unlock()
+	l.ended = true
+	_ = l.stream.CloseSend() // it cannot fail
 }
 
 // serve carries the stream over a link until that ends, and returns why.
@@ -182,9 +195,7 @@ func (s *JudgeStream) feed(l *link) {
 			// A failure shows at the receiver.
 			_ = l.send(&kinegatev1.JudgeRequest{Frame: &kinegatev1.JudgeRequest_Block{Block: block}})
 		case end:
-			l.sending.Lock()
-			_ = l.stream.CloseSend() // it cannot fail
-			l.sending.Unlock()
+			l.end()
 			return
 		default:
 			return

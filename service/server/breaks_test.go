@@ -3,6 +3,7 @@ package server
 import (
 	"context"
 	"net"
+	"strings"
 	"sync"
 	"sync/atomic"
 	"testing"
@@ -247,8 +248,11 @@ func TestStuckServerIsFound(t *testing.T) {
 	var begun, found time.Time
 	verify(t, c, history.Run{
 		Client: r.client(t, l.through), Open: history.AllEntries(), Events: events, PerBlock: 100,
-		Options: kinegate.JudgeOptions{Broken: func(error) {
+		Options: kinegate.JudgeOptions{Broken: func(err error) {
 			found = time.Now()
+			if !strings.Contains(err.Error(), "stuck") {
+				t.Errorf("it broke for another reason: %v", err)
+			}
 			l.lead(r.network)
 		}},
 		Before: func(from int) {
