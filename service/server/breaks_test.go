@@ -10,6 +10,9 @@ import (
 	"time"
 
 	"google.golang.org/grpc"
+	"google.golang.org/grpc/codes"
+	"google.golang.org/grpc/credentials/insecure"
+	"google.golang.org/grpc/status"
 	"google.golang.org/grpc/test/bufconn"
 
 	kinegate "example.org/kinegate/clients/go"
@@ -134,6 +137,44 @@ func TestHistoryAcrossCuts(t *testing.T) {
 	}
 	if counts := c.Counts(); counts.Answered != events || counts.Expired > 0 {
 		t.Errorf("%+v", counts)
+	}
+}
+
+// TestNothingIsReplayed: a connection breaks after the first block of a caller whose
+// transport retries everything. The headers were there at once, so that it replays
+// nothing to the next server.
+func TestNothingIsReplayed(t *testing.T) {
+	first, second := start(t), start(t)
+	l := first.gateLine()
+	var o kinegate.Options
+	l.through(&o)
+	conn, err := grpc.NewClient("passthrough:memory", append(o.DialOptions,
+		grpc.WithTransportCredentials(insecure.NewCredentials()),
+		grpc.WithDefaultServiceConfig(`{"methodConfig": [{"name": [{}], "waitForReady": true, "retryPolicy": {
+			"maxAttempts": 5, "initialBackoff": "0.01s", "maxBackoff": "0.1s", "backoffMultiplier": 2,
+			"retryableStatusCodes": ["UNAVAILABLE", "INTERNAL", "UNKNOWN"]}}]}`))...)
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer func() { _ = conn.Close() }()
+	stream, err := kinegatev1.NewSelectionServiceClient(conn).Judge(t.Context())
+	if err != nil {
+		t.Fatal(err)
+	}
+	send(t, stream, &kinegatev1.JudgeRequest{Frame: &kinegatev1.JudgeRequest_Open{Open: history.AllEntries()}})
+	sendBlock(t, stream, history.Photons(0, 10))
+	eventually(t, "judged", func() bool { return first.metric(t, "kinegate_judge_events_total") == 10 })
+	l.lead(second.network)
+	l.cut()
+	for err == nil {
+		_, err = stream.Recv()
+	}
+	if status.Code(err) != codes.Unavailable {
+		t.Errorf("the stream ends with %v", err)
+	}
+	time.Sleep(300 * time.Millisecond) // attempts would have been made by now
+	if n := second.metric(t, "kinegate_judge_events_total"); n != 0 {
+		t.Errorf("the second server judged %v events", n)
 	}
 }
 
