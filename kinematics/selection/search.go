@@ -274,9 +274,10 @@ func (c *candidate) miss(fit *constraint.Result, objects *[MaxProducts]uint8) {
 }
 
 // standing returns the rank by which an accepted candidate compares with other
-// hypotheses.
+// hypotheses. Where a probability is too small for a number the chi-square ranks, after
+// all those that are numbers.
 func (c *candidate) standing(h *hypothesis) float64 {
-	if h.byFit {
+	if h.byFit && c.fit.Probability > 0 {
 		return -c.fit.Probability
 	}
 	return c.rank

@@ -42,6 +42,7 @@ func judgeCommand(p program) *cobra.Command {
 	f.StringVar(&j.outFile, "out", "", "write one line per event with its verdicts to this CSV file")
 	f.StringArrayVar(&j.compare, "compare", nil, "compare a column with a recorded observable, as COLUMN=NAME/LABEL; NAME is a hypothesis or a group")
 	f.StringArrayVar(&j.histograms, "histogram", nil, `draw a recorded observable, as NAME/LABEL=LOW:HIGH:BINS`)
+	f.StringVar(&j.assume, "assume-resolution", "", `resolution of momentum and direction where a file has no covariances, which fits need, as "PART:ANGLE", such as "1.5 %:1 mrad"`)
 	f.Int64Var(&j.explain, "explain", 0, "explain the verdict on the event of this id, and judge no other")
 	f.IntVar(&j.assignments, "assignments", 3, "assignments to show for a hypothesis with --explain, 1 to 1000") //nolint:mnd // a default
 	f.IntVar(&j.blockEvents, "block-events", 1000, "events per block, 1 to 4096")
@@ -57,6 +58,7 @@ type judgeRun struct {
 	compare, histograms                 []string
 	blockEvents                         int
 
+	assume      string
 	explaining  bool
 	explain     int64
 	assignments int
@@ -87,15 +89,19 @@ func (j *judgeRun) run(ctx context.Context, files []string) error {
 	if err := j.check(ctx, client, string(yaml)); err != nil {
 		return err
 	}
+	source := &eventSource{files: files, perBlock: j.blockEvents}
+	next, err := j.blocks(source)
+	if err != nil {
+		return err
+	}
 	if j.explaining {
-		return j.explainEvent(ctx, client, files)
+		return j.explainEvent(ctx, client, files, next)
 	}
 	sinks, err := j.sinks()
 	if err != nil {
 		return err
 	}
 	sums := newTally(j.checked.GetHypotheses())
-	source := &eventSource{files: files, perBlock: j.blockEvents}
 	progress := text.NewProgress(j.err, j.terminal, "judging", source.size())
 	open := &kinegatev1.JudgeOpen{
 		Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: j.checked.GetSelection()}},
@@ -105,7 +111,7 @@ func (j *judgeRun) run(ctx context.Context, files []string) error {
 		},
 	}
 	start := time.Now()
-	err = pump(ctx, gate, open, source.next, func(b *batch[eventfile.Event], v *kinegate.Verdicts) error {
+	err = pump(ctx, gate, open, next, func(b *batch[eventfile.Event], v *kinegate.Verdicts) error {
 		sums.add(v)
 		progress.Set(source.read.Load())
 		if err := j.tell(v.Block, nil); err != nil || j.json && j.outFile == "" {
@@ -123,6 +129,24 @@ func (j *judgeRun) run(ctx context.Context, files []string) error {
 		return err
 	}
 	return j.report(sums, sinks, time.Since(start))
+}
+
+// blocks returns what gives the blocks of the files, with the resolution that is assumed.
+func (j *judgeRun) blocks(source *eventSource) (next func() (*batch[eventfile.Event], error), err error) {
+	if j.assume == "" {
+		return source.next, nil
+	}
+	assumed, err := parseResolution(j.assume)
+	if err != nil {
+		return nil, err
+	}
+	return func() (*batch[eventfile.Event], error) {
+		b, err := source.next()
+		if err != nil {
+			return nil, err
+		}
+		return b, assumed.fill(b.block)
+	}, nil
 }
 
 // check reads the selection on the server, which also gives it in its own form.

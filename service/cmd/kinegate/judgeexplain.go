@@ -12,17 +12,19 @@ import (
 	kinegate "example.org/kinegate/clients/go"
 	"example.org/kinegate/proto/column"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+	"example.org/kinegate/service/cmd/kinegate/internal/eventfile"
 	"example.org/kinegate/service/cmd/kinegate/internal/text"
 )
 
 // explainEvent finds the event in the files and prints why it was judged as it was.
-func (j *judgeRun) explainEvent(ctx context.Context, client *kinegate.Client, files []string) error {
+func (j *judgeRun) explainEvent(
+	ctx context.Context, client *kinegate.Client, files []string, next func() (*batch[eventfile.Event], error),
+) error {
 	if j.assignments < 1 || j.assignments > 1000 {
 		return badInput("--assignments %d: 1 to 1000 are allowed", j.assignments)
 	}
-	source := &eventSource{files: files, perBlock: j.blockEvents}
 	for {
-		b, err := source.next()
+		b, err := next()
 		if errors.Is(err, io.EOF) {
 			return badInput("no event %d in %s", j.explain, strings.Join(files, ", "))
 		}
