@@ -11,7 +11,7 @@ from typing import TYPE_CHECKING, Any, Final, Self
 
 import numpy as np
 
-from kinegate import columns, csvfile, frames
+from kinegate import arrow, columns, csvfile, frames
 from kinegate.parts import (
     BeamCandidates,
     ClusterPositions,
@@ -352,22 +352,18 @@ class Events:
     def to_arrow(self) -> Any:
         """Return an Arrow table of one row an event, with lists of its objects inside.
 
-        The lists view the columns without a copy. Masks, covariances, beam candidates and
-        `extra` go along; vertices, clusters and polarisation do not.
+        The lists view the columns without a copy. All optional columns and `extra` go along.
 
         >>> sample = Events.read_csv("../../testdata/open/dimuon_2011A.csv")
         >>> len(Events.from_arrow(sample.to_arrow()))
         3000
         """
-        return frames.events_to_arrow(self)
+        return arrow.events_to_table(self, _PARTS)
 
     @classmethod
     def from_arrow(cls, table: Any) -> Self:
         """Make events from an Arrow table as :meth:`to_arrow` makes it."""
-        arguments = frames.events_from_arrow(table, COORDINATES)
-        if (beam := arguments.pop("beam", None)) is not None:
-            arguments["beam"] = BeamCandidates(**beam)
-        return cls.of(**arguments)
+        return cls.of(**arrow.events_from_table(table, COORDINATES, _PARTS))
 
 
 def _offsets(given: ArrayLike | None, shape: tuple[int, ...]) -> NDArray[np.int32]:
