@@ -166,7 +166,7 @@ class Assignment:
         tables = []
         if rows := [_window_row(w) for w in self.windows]:
             columns = ("window", "value", "spread", "", "room to the limit")
-            tables.append(Table("", columns, rows))
+            tables.append(_filled("", columns, rows))
         if self.fit is not None:
             rows = [
                 [c.name, _number(c.before, c.unit, 4), _number(c.after, c.unit, 2)]
@@ -228,8 +228,9 @@ class HypothesisExplanation:
             return [Table(title, note=self.obstacle or "no assignment")]
         rows = [_assignment_row(a) for a in self.assignments[:_SHOWN]]
         columns = ("objects", "beam row", "passes", "fit", "probability")
-        note = f"{self.message.assignment_count} assignments tried"
-        return [Table(title, columns, rows, note), *best.tables()]
+        count = self.message.assignment_count
+        note = f"{count} {'assignment' if count == 1 else 'assignments'} tried"
+        return [_filled(title, columns, rows, note), *best.tables()]
 
 
 class Explanation(Answer[explanation_pb2.ExplainVerdictResponse]):
@@ -290,6 +291,15 @@ def _window(message: explanation_pb2.WindowExplanation) -> WindowExplanation:
         message.inside,
         min(limits) if limits else None,
     )
+
+
+def _filled(
+    title: str, columns: Sequence[str], rows: Sequence[Sequence[str]], note: str = ""
+) -> Table:
+    """Make a table of the columns that say anything."""
+    kept = [k for k in range(len(columns)) if any(row[k] for row in rows)]
+    cells = [[row[k] for k in kept] for row in rows]
+    return Table(title, [columns[k] for k in kept], cells, note)
 
 
 def _assignment_row(assignment: Assignment) -> list[str]:
