@@ -4,12 +4,14 @@ import (
 	"context"
 	"net"
 	"strings"
+	"sync"
 	"sync/atomic"
 	"testing"
 	"time"
 
 	"google.golang.org/genproto/googleapis/rpc/errdetails"
 	"google.golang.org/grpc"
+	"google.golang.org/grpc/codes"
 	"google.golang.org/grpc/credentials/insecure"
 	"google.golang.org/grpc/status"
 
@@ -57,6 +59,44 @@ func TestQuotaOfOneCaller(t *testing.T) {
 	if err := <-done; err != nil {
 		t.Error(err)
 	}
+}
+
+// TestNobodyWaitsUnseen: a caller with more calls than he may have open is refused and
+// counted before any of them waits in his own client, where nobody sees it.
+func TestNobodyWaitsUnseen(t *testing.T) {
+	leave := make(chan struct{})
+	h := &hooked{answer: func(context.Context) (*kinegatev1.GetInfoResponse, error) {
+		<-leave
+		return &kinegatev1.GetInfoResponse{}, nil
+	}}
+	r, client, _ := startHooked(t, h, func(o *Options, _ *Deps) { o.WorkSlots = 2 })
+	const more = 25
+	calls := r.options.CallerCalls + more
+	refused := make(chan time.Duration, calls)
+	var all sync.WaitGroup
+	for range calls {
+		all.Go(func() {
+			begun := time.Now()
+			if _, err := client.GetInfo(t.Context(), &kinegatev1.GetInfoRequest{}); err != nil {
+				if status.Code(err) != codes.ResourceExhausted {
+					t.Error(err)
+				}
+				refused <- time.Since(begun)
+			}
+		})
+	}
+	eventually(t, "the refusals", func() bool { return len(refused) == more })
+	longest := time.Duration(0)
+	for range more {
+		longest = max(longest, <-refused)
+	}
+	counted := r.metric(t, "rpc_server_rejected_total", string(api.QuotaExceeded))
+	figure(t, "T4 %d calls on one connection: %d refused and counted, the last after %.1f ms", calls, int(counted), ms(longest))
+	if counted != more || longest > bound(100*time.Millisecond) {
+		t.Errorf("%g counted, the last after %v", counted, longest)
+	}
+	close(leave)
+	all.Wait()
 }
 
 // TestCallersThatSendNothing: a call whose message never comes ends like any other.

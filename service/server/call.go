@@ -130,7 +130,7 @@ func (c *call) SendHeader(header metadata.MD) error {
 // head adds the trace to the headers of a call that is going to be answered. Before
 // that a failure must stay without headers: a client that has some does not try again.
 func (c *call) head() {
-	c.headed.Do(func() { _ = c.SetHeader(metadata.Pairs(traceKey, c.trace.header())) }) // too late if it fails
+	c.headed.Do(func() { _ = c.SetHeader(metadata.MD{traceKey: {c.trace.header()}}) }) // too late if it fails
 }
 
 // SendMsg sends a message.

@@ -97,7 +97,7 @@ func TestWorkEndsWithItsCaller(t *testing.T) {
 				<-done
 			}
 			figure(t, "T1 %s of %.0f ms or more: the work ends at most %.1f ms after its caller", name, length.Seconds()*1e3, longest.Seconds()*1e3)
-			if longest > 50*time.Millisecond*slowdown {
+			if longest > bound(50*time.Millisecond) {
 				t.Errorf("the work goes on for %v", longest)
 			}
 			eventually(t, "the goroutines of before", func() bool { return runtime.NumGoroutine() <= goroutines })

@@ -337,7 +337,7 @@ func (f *front) end(c *call, err error) error {
 	if c.requestID != c.reference {
 		failure = failure.With("request_id", c.requestID)
 	}
-	c.SetTrailer(metadata.Pairs(traceKey, c.trace.header()))
+	c.SetTrailer(metadata.MD{traceKey: {c.trace.header()}})
 	if failure.RetryAfter > 0 {
 		c.SetTrailer(metadata.Pairs(pushbackKey, strconv.FormatInt(failure.RetryAfter.Milliseconds(), 10)))
 	}

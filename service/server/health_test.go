@@ -83,6 +83,13 @@ func TestHealthFollowsLife(t *testing.T) {
 	if s := seen(); s != healthpb.HealthCheckResponse_NOT_SERVING {
 		t.Errorf("watch goes on with %v", s)
 	}
+	told := time.Now()
+	eventually(t, "the other surface", func() bool { code, _ := get(t, web, "/readyz"); return code == http.StatusServiceUnavailable })
+	if apart := time.Since(told); apart > bound(100*time.Millisecond) {
+		t.Errorf("the surfaces change %v apart", apart)
+	} else {
+		figure(t, "H1 the two surfaces change at most %.1f ms apart", ms(apart))
+	}
 	states(healthpb.HealthCheckResponse_NOT_SERVING, 503)
 	// During the notice, calls are answered as before.
 	if _, err := kinegatev1.NewInfoServiceClient(r.general(t)).GetInfo(t.Context(), &kinegatev1.GetInfoRequest{}); err != nil {

@@ -2,9 +2,9 @@ package server
 
 import (
 	"context"
-	"crypto/rand"
+	"encoding/binary"
 	"encoding/hex"
-	"strings"
+	"math/rand/v2"
 
 	"google.golang.org/grpc/metadata"
 )
@@ -29,12 +29,12 @@ type trace struct {
 // traceOf continues the trace of a caller, or begins one if there is none or it is
 // malformed.
 func traceOf(ctx context.Context) trace {
-	t := trace{span: randomHex(spanDigits / 2)}
+	t := trace{span: randomHex(spanDigits)}
 	if values := metadata.ValueFromIncomingContext(ctx, traceKey); len(values) == 1 {
 		t.id, t.sampled = parseTraceparent(values[0])
 	}
 	if t.id == "" {
-		t.id = randomHex(traceDigits / 2)
+		t.id = randomHex(traceDigits)
 	}
 	return t
 }
@@ -48,32 +48,58 @@ func (t trace) header() string {
 	return "00-" + t.id + "-" + t.span + "-" + flags
 }
 
+// Where the parts of a traceparent of version 00 begin, and its length.
+const (
+	idAt              = 3
+	spanAt            = idAt + traceDigits + 1
+	flagsAt           = spanAt + spanDigits + 1
+	traceparentLength = flagsAt + flagDigits
+)
+
 // parseTraceparent returns the trace id of a header and whether it is sampled; the id is
 // empty for one that is malformed. Later versions may have more after the flags.
 func parseTraceparent(text string) (id string, sampled bool) {
-	const length = 2 + 1 + traceDigits + 1 + spanDigits + 1 + flagDigits
-	if len(text) < length || len(text) > length && (text[:2] == "00" || text[length] != '-') {
+	if len(text) < traceparentLength || text[:2] == "ff" ||
+		len(text) > traceparentLength && (text[:2] == "00" || text[traceparentLength] != '-') {
 		return "", false
 	}
-	parts := strings.Split(text[:length], "-")
-	if len(parts) != 4 || len(parts[0]) != 2 || len(parts[1]) != traceDigits || len(parts[2]) != spanDigits {
+	if text[idAt-1] != '-' || text[spanAt-1] != '-' || text[flagsAt-1] != '-' {
 		return "", false
 	}
-	for _, p := range parts {
-		if strings.Trim(p, "0123456789abcdef") != "" {
+	id, span, flags := text[idAt:spanAt-1], text[spanAt:flagsAt-1], text[flagsAt:traceparentLength]
+	for _, part := range [...]string{text[:2], id, span, flags} {
+		if !lowerHex(part) {
 			return "", false
 		}
 	}
-	if parts[0] == "ff" || strings.Trim(parts[1], "0") == "" || strings.Trim(parts[2], "0") == "" {
+	if id == noTrace || span == noTrace[:spanDigits] {
 		return "", false
 	}
-	flags, err := hex.DecodeString(parts[3])
-	return parts[1], err == nil && flags[0]&1 == 1
+	bits, err := hex.DecodeString(flags)
+	return id, err == nil && bits[0]&1 == 1
 }
 
-// randomHex returns random bytes in hexadecimal.
-func randomHex(n int) string {
-	b := make([]byte, n)
-	_, _ = rand.Read(b) // it never fails
-	return hex.EncodeToString(b)
+// noTrace is the id that stands for none.
+const noTrace = "00000000000000000000000000000000"
+
+// lowerHex reports whether a text is of hexadecimal digits in lower case alone.
+func lowerHex(text string) bool {
+	for _, b := range []byte(text) {
+		if (b < '0' || b > '9') && (b < 'a' || b > 'f') {
+			return false
+		}
+	}
+	return true
+}
+
+// randomHex returns so many random hexadecimal digits, a multiple of 16. Ids must differ;
+// they are no secret.
+func randomHex(digits int) string {
+	var raw [traceDigits / 2]byte
+	var text [traceDigits]byte
+	for at := 0; at < digits/2; at += 8 {
+		binary.BigEndian.PutUint64(raw[at:], rand.Uint64()) //nolint:gosec // see above
+	}
+	hex.Encode(text[:], raw[:digits/2])
+	return string(text[:digits])
 }

@@ -2,7 +2,9 @@ package server
 
 import (
 	"strings"
+	"syscall"
 	"testing"
+	"time"
 
 	"google.golang.org/grpc"
 	"google.golang.org/grpc/metadata"
@@ -75,5 +77,41 @@ func TestTraceJoins(t *testing.T) {
 	_, err := kinegatev1.NewParticleServiceClient(r.general(t)).GetParticle(ctx, &kinegatev1.GetParticleRequest{}, grpc.Trailer(&trailer))
 	if got := trailer.Get("traceparent"); err == nil || len(got) != 1 || !strings.HasPrefix(got[0], "00-"+traceID+"-") {
 		t.Errorf("a failure: %v, trailer %q", err, got)
+	}
+}
+
+// TestTracesCostLittle compares what the trace of a call costs with what an
+// ordinary call costs the server, taken as half of what it costs client and server together.
+func TestTracesCostLittle(t *testing.T) {
+	operations(t)
+	r := start(t, onSockets)
+	ctx := metadata.NewIncomingContext(t.Context(), metadata.Pairs(traceKey, "00-0af7651916cd43dd8448eb211c80319c-b7ad6b7169203331-01"))
+	request, _ := seeds()[0].(*kinegatev1.DescribeReactionRequest)
+	client := kinegatev1.NewReactionServiceClient(connect(t, r.Addr(General).String()))
+	const calls = 20_000
+	used := func() time.Duration {
+		var u syscall.Rusage
+		if err := syscall.Getrusage(syscall.RUSAGE_SELF, &u); err != nil {
+			t.Fatal(err)
+		}
+		return time.Duration(u.Utime.Nano() + u.Stime.Nano())
+	}
+	const traces = 1_000_000
+	before := used()
+	for range traces {
+		_ = metadata.MD{traceKey: {traceOf(ctx).header()}}
+	}
+	trace := (used() - before).Nanoseconds() / traces
+	before = used()
+	for range calls {
+		if _, err := client.DescribeReaction(t.Context(), request); err != nil {
+			t.Fatal(err)
+		}
+	}
+	call := (used() - before).Nanoseconds() / calls / 2
+	share := float64(trace) / float64(call)
+	figure(t, "O8 the trace of a call takes %d ns of %d ns: %.1f %%", trace, call, 100*share)
+	if share > 0.03 {
+		t.Errorf("%.1f %%", 100*share)
 	}
 }
