@@ -52,7 +52,7 @@ class JudgeSettings(TypedDict, total=False):
     entries: str
     """Which entries to return: "none", "accepted" or "all"."""
     events_per_block: int
-    """Events a block, at most 4,096."""
+    """Most events a block, up to 4,096; and it holds at most four times as many beam candidates."""
     latency_budget: float | None
     """Time in second after which a block's events count as late."""
     late: str
