@@ -13,7 +13,8 @@ func main() {
 	}
 }
 
-const usage = "usage: check settings FOLDER | check manifests -settings FILE FOLDER | check sbom PROGRAM"
+const usage = "usage: check settings FOLDER | check manifests -settings FILE FOLDER | check sbom PROGRAM | " +
+	"check provenance -commit COMMIT [-builder URI] PROGRAM"
 
 func run(arguments []string) error {
 	if len(arguments) == 0 {
@@ -21,6 +22,8 @@ func run(arguments []string) error {
 	}
 	flags := flag.NewFlagSet(arguments[0], flag.ContinueOnError)
 	settingsFile := flags.String("settings", "", "what `kinegate serve --print-config` prints for the settings of the ConfigMap")
+	commit := flags.String("commit", "", "commit that the program was built from")
+	builder := flags.String("builder", "", "URI of who built it")
 	if err := flags.Parse(arguments[1:]); err != nil {
 		return err
 	}
@@ -58,6 +61,8 @@ func run(arguments []string) error {
 		return nil
 	case "sbom":
 		return writeSBOM(os.Stdout, flags.Arg(0))
+	case "provenance":
+		return writeProvenance(os.Stdout, flags.Arg(0), *commit, *builder)
 	}
 	return fmt.Errorf(usage)
 }

@@ -1,6 +1,8 @@
 package main
 
 import (
+	"encoding/json"
+	"io"
 	"os"
 	"path/filepath"
 	"strings"
@@ -95,5 +97,31 @@ func TestBreaches(t *testing.T) {
 				t.Errorf("the breach was not seen: %q", seen)
 			}
 		})
+	}
+}
+
+// TestProvenance: what is not a commit is no provenance, and this program's own names its
+// toolchain and each of its modules.
+func TestProvenance(t *testing.T) {
+	self, err := os.Executable()
+	if err != nil {
+		t.Fatal(err)
+	}
+	if err := writeProvenance(io.Discard, self, "main", ""); err == nil {
+		t.Error("a branch is taken for a commit")
+	}
+	var b strings.Builder
+	commit := strings.Repeat("0123456789", 4)
+	if err := writeProvenance(&b, self, commit, "https://example.org/builder"); err != nil {
+		t.Fatal(err)
+	}
+	var s statement
+	if err := json.Unmarshal([]byte(b.String()), &s); err != nil {
+		t.Fatal(err)
+	}
+	d := s.Predicate.BuildDefinition
+	if len(s.Subject) != 1 || len(s.Subject[0].Digest["sha256"]) != 64 || len(d.ResolvedDependencies) < 3 ||
+		d.ResolvedDependencies[0].Digest["gitCommit"] != commit || d.ExternalParameters["goVersion"] == "" {
+		t.Errorf("got %s", b.String())
 	}
 }
