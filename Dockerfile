@@ -25,4 +25,6 @@ USER 65532:65532
 # Judge streams, other rpcs, plaintext health, metrics over HTTP. All four listen on loopback until
 # their addresses are set; beyond it the rpc listeners want TLS.
 EXPOSE 8470 8471 8472 8473
+# For engines that have no probe of their own; Kubernetes asks the health port itself.
+HEALTHCHECK --interval=10s --timeout=3s CMD ["/kinegate", "health"]
 ENTRYPOINT ["/kinegate"]

@@ -91,6 +91,7 @@ func commands(p program) []*cobra.Command {
 		judgeCommand(p),
 		demoCommand(p),
 		serveCommand(p),
+		healthCommand(p),
 		versionCommand(p),
 	}
 }
