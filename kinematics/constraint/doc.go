@@ -24,6 +24,13 @@
 // is a line on which two of them lie. Angles run over the reals from the measured
 // value; they are folded back only when reported.
 //
+// The covariances are taken as they are given. With those at the true values, probabilities
+// are flat and pulls normal as far as the constraints are linear over the errors; what is left
+// of the mean of a pull is proportional to the resolutions: at most 0.06 standard deviations
+// for photons of 5 %/sqrt(E) and 3 mrad in the channels of TestNonLinearity. A detector knows
+// its resolutions at the measured values, where an object that came out low looks more precise
+// than it is: the largest mean is then 0.10, and proportional too.
+//
 // A Problem is compiled once for a hypothesis. Each worker has its own Fitter,
 // whose steady state allocates nothing. Units: GeV (c = 1), radian, metre.
 //

@@ -34,6 +34,19 @@ type toy struct {
 	spread float64
 	// spreadZ is the length in metres over which the vertex is spread.
 	spreadZ float64
+	// flip turns the sign of every error, so that what is linear in them cancels
+	// between an event and its flipped twin.
+	flip bool
+	// atMeasured hands the fit the covariances at the measured values.
+	atMeasured bool
+}
+
+// normal returns an error in standard deviations.
+func (y *toy) normal(s *random.Stream) float64 {
+	if y.flip {
+		return -s.Normal()
+	}
+	return s.Normal()
 }
 
 // between returns a number within a range, evenly spread. Like all of the toys it rounds
@@ -227,7 +240,7 @@ func (y *toy) event(f *constraint.Fitter, s *random.Stream) (truth []momentum.Fo
 		switch o.Form {
 		case constraint.Along:
 			sigma := 0.003 * y.spread
-			*m = constraint.Beam(p.E+float64(sigma*s.Normal()), sigma, 0)
+			*m = constraint.Beam(p.E+float64(sigma*y.normal(s)), sigma, 0)
 		case constraint.Coordinates:
 			y.measure(m, o, p, z, s)
 		case constraint.Missing, constraint.MissingMass:
@@ -256,10 +269,6 @@ func (y *toy) accepts(truth []momentum.Four) bool {
 // re-pointed one is found on a sphere of 1 m and seen from its centre.
 func (y *toy) measure(m *constraint.Measurement, o *constraint.Object, p momentum.Four, z float64, s *random.Stream) {
 	size := p.P.Norm()
-	relative, angle := 0.05/math.Sqrt(size), 0.003
-	if o.MassGeV > 0 {
-		relative, angle = 0.01, 0.002
-	}
 	seen := p.P
 	if o.Repointed {
 		u := p.P.Unit()
@@ -267,16 +276,28 @@ func (y *toy) measure(m *constraint.Measurement, o *constraint.Object, p momentu
 		m.Origin, m.Cluster, seen = momentum.Three{}, hit, hit
 	}
 	theta, phi := seen.Theta(), seen.Phi()
-	sigma := [3]float64{relative * size * y.spread, angle * y.spread, angle / num.Sin(theta) * y.spread}
+	sigma := y.resolution(o, size, theta)
 	const rho = 0.4
-	x, w, v := s.Normal(), s.Normal(), s.Normal()
+	x, w, v := y.normal(s), y.normal(s), y.normal(s)
 	m.Kind, m.MassGeV = event.MomentumAngles, o.MassGeV
 	m.Values = [3]float64{
 		size + float64(sigma[0]*x),
 		theta + float64(sigma[1]*(float64(rho*x)+float64(math.Sqrt(1-rho*rho)*w))),
 		phi + float64(sigma[2]*v),
 	}
+	if y.atMeasured {
+		sigma = y.resolution(o, m.Values[0], m.Values[1])
+	}
 	m.Covariance = [6]float64{sigma[0] * sigma[0], rho * sigma[0] * sigma[1], 0, sigma[1] * sigma[1], 0, sigma[2] * sigma[2]}
+}
+
+// resolution is that of an object of this momentum and angle.
+func (y *toy) resolution(o *constraint.Object, size, theta float64) [3]float64 {
+	relative, angle := 0.05/math.Sqrt(size), 0.003
+	if o.MassGeV > 0 {
+		relative, angle = 0.01, 0.002
+	}
+	return [3]float64{relative * size * y.spread, angle * y.spread, angle / num.Sin(theta) * y.spread}
 }
 
 func fitter(t testing.TB, spec *constraint.Spec) *constraint.Fitter {
@@ -299,6 +320,9 @@ func (m *moments) add(x float64) {
 
 func (m *moments) mean() float64  { return m.sum / m.n }
 func (m *moments) width() float64 { return math.Sqrt(m.squares/m.n - m.mean()*m.mean()) }
+
+// uncertainty is that of the mean.
+func (m *moments) uncertainty() float64 { return m.width() / math.Sqrt(m.n) }
 
 // fits runs events of a toy and returns the probabilities, the pulls of each measured
 // parameter and the distances from the truth in fitted standard deviations.
