@@ -169,8 +169,8 @@ def start_server(
 def find_program(program: str | PathLike[str] | None = None) -> str:
     """Return the path of the `kinegate` program, or say how to get it.
 
-    >>> kinegate.find_program().endswith("kinegate")
-    True
+    >>> kinegate.find_program()
+    '...kinegate...'
     """
     wanted = os.fspath(program or os.environ.get("KINEGATE") or "kinegate")
     found = shutil.which(wanted)
