@@ -5,7 +5,9 @@ import (
 	"fmt"
 	"net"
 	"os"
+	"os/exec"
 	"path/filepath"
+	"strings"
 	"sync"
 	"sync/atomic"
 	"testing"
@@ -81,6 +83,18 @@ func TestCertificateRotation(t *testing.T) {
 		defer func() { _ = conn.Close() }()
 		return conn.ConnectionState().PeerCertificates[0].SerialNumber.Int64(), nil
 	}
+	own := files{filepath.Join(folder, "own.crt"), filepath.Join(folder, "own.key"), filepath.Join(folder, "authority.crt")}
+	writeFile(t, own.certificate, chain)
+	writeFile(t, own.key, key)
+	writeFile(t, own.clientCA, a.pem)
+	otherClient := func(when string) {
+		t.Helper()
+		says := openssl(t, r.Addr(Gate).String(), own)
+		if !strings.Contains(says, "TLSv1.3") || !strings.Contains(says, "ALPN protocol: h2") || !strings.Contains(says, "Verify return code: 0") {
+			t.Errorf("%s, openssl says %s", when, says)
+		}
+	}
+	otherClient("before")
 	stop := make(chan struct{})
 	var made, failed atomic.Int64
 	var seen sync.Map
@@ -129,11 +143,28 @@ func TestCertificateRotation(t *testing.T) {
 			t.Fatalf("serial %d, not %d, after %v: %v", serial, last, time.Since(begun), err)
 		}
 	}
+	otherClient("after")
 	figure(t, "X3 %d swaps, %d handshakes, %d failed, %d certificates seen; a last one served %.1f s after its swap",
 		swaps, made.Load(), failed.Load(), served, time.Since(begun).Seconds())
 	if served < swaps/4 {
 		t.Errorf("only %d certificates were served", served)
 	}
+}
+
+// openssl connects with a client that is not Go's and returns what that says.
+func openssl(t *testing.T, where string, own files) string {
+	t.Helper()
+	program, err := exec.LookPath("openssl")
+	if err != nil {
+		t.Skip("NOT CHECKED: there is no openssl")
+	}
+	command := exec.CommandContext(t.Context(), program, "s_client", "-connect", where, "-servername", "localhost", "-alpn", "h2", //nolint:gosec // the test's own
+		"-CAfile", own.clientCA, "-cert", own.certificate, "-key", own.key)
+	out, err := command.CombinedOutput() // no input: it ends once connected
+	if err != nil {
+		t.Errorf("openssl: %v", err)
+	}
+	return string(out)
 }
 
 // TestDrainWithEverything drains a server on sockets that has stalled readers, watches of
