@@ -4,6 +4,7 @@ import (
 	"math"
 	"slices"
 	"strconv"
+	"strings"
 	"testing"
 
 	"example.org/kinegate/kinematics/constraint"
@@ -111,16 +112,12 @@ func pions(n int) []selection.FitMass {
 
 // taggedFit is gamma p -> p and n neutral pions, the proton missing, fitted.
 func taggedFit(n int) selection.Hypothesis {
-	text := "gamma p -> p"
-	for range n {
-		text += " pi0"
-	}
 	masses := pions(n)
 	if n == 1 {
 		masses[0].Products[0] = "pi0"
 	}
 	return selection.Hypothesis{
-		Reaction: text + ", pi0 -> gamma gamma", Measurements: missing("p"),
+		Reaction: "gamma p -> p" + strings.Repeat(" pi0", n) + ", pi0 -> gamma gamma", Measurements: missing("p"),
 		Beam: &selection.BeamSource{Tagged: &selection.TaggedBeam{}},
 		Fit:  &selection.Fit{Masses: masses},
 	}

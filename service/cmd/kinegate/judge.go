@@ -42,7 +42,8 @@ func judgeCommand(p program) *cobra.Command {
 	f.StringVar(&j.outFile, "out", "", "write one line per event with its verdicts to this CSV file")
 	f.StringArrayVar(&j.compare, "compare", nil, "compare a column with a recorded observable, as COLUMN=NAME/LABEL; NAME is a hypothesis or a group")
 	f.StringArrayVar(&j.histograms, "histogram", nil, `draw a recorded observable, as NAME/LABEL=LOW:HIGH:BINS`)
-	f.StringVar(&j.assume, "assume-resolution", "", `resolution of momentum and direction where a file has no covariances, which fits need, as "PART:ANGLE", such as "1.5 %:1 mrad"`)
+	f.StringVar(&j.assume, "assume-resolution", "",
+		`resolution of momentum and direction for files without the covariances that fits need, as "PART:ANGLE", such as "1.5 %:1 mrad"`)
 	f.Int64Var(&j.explain, "explain", 0, "explain the verdict on the event of this id, and judge no other")
 	f.IntVar(&j.assignments, "assignments", 3, "assignments to show for a hypothesis with --explain, 1 to 1000") //nolint:mnd // a default
 	f.IntVar(&j.blockEvents, "block-events", 1000, "events per block, 1 to 4096")

@@ -1,0 +1,88 @@
+package main
+
+import (
+	"math"
+	"testing"
+
+	"google.golang.org/protobuf/encoding/protojson"
+
+	"example.org/kinegate/proto/column"
+	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+)
+
+const (
+	pionsSelection = "../../../testdata/selections/two-pions.yaml"
+	pionsEvents    = "../../../testdata/simulated/two-pions.kgb"
+	leptonsFit     = "../../../testdata/selections/four-lepton-fit.yaml"
+	leptonsEvents  = "../../../testdata/open/4mu_2011.csv"
+)
+
+func TestJudgeExplain(t *testing.T) {
+	t.Parallel()
+	judgePions := "judge --selection " + pionsSelection + " " + pionsEvents
+	for _, c := range []struct {
+		arguments string
+		code      int
+		says      string
+	}{
+		{judgePions + " --explain 4", exitWell, "fit converged: chi-square"},
+		{judgePions + " --explain 4", exitWell, "OUTSIDE"},
+		{judgePions + " --explain 1", exitWell, "passes, the best"},
+		{judgePions + " --explain 0", exitWell, "the rule on extra objects forbids the difference"},
+		{judgePions + " --explain 999", exitUsage, "no event 999"},
+		{judgePions + " --explain 4 --assignments 0", exitUsage, "1 to 1000"},
+		{"judge --selection " + leptonsFit + " " + leptonsEvents + ` --assume-resolution "1.5 %:1 mrad" --explain 34442568`, exitWell, "mass of mu+[0] mu-[0]"},
+		{"judge --selection " + leptonsFit + " " + leptonsEvents + " --explain 34442568", exitUsage, "covariance"},
+		{"judge --selection " + leptonsFit + " " + leptonsEvents, exitFailed, "covariance"},
+		{"judge --selection " + leptonsFit + " " + leptonsEvents + " --assume-resolution 0.015", exitUsage, "PART:ANGLE"},
+		{"judge --selection " + leptonsFit + " " + leptonsEvents + ` --assume-resolution "2:1 mrad"`, exitUsage, "below 1"},
+		{"judge --selection " + leptonsFit + " " + leptonsEvents + ` --assume-resolution "0.01:1 GeV"`, exitUsage, "--assume-resolution"},
+	} {
+		wantCommand(t, c.arguments, c.code, c.says)
+	}
+	code, out, errs := command(t, "judge", "--selection", pionsSelection, pionsEvents, "--explain", "4", "--json")
+	var reply kinegatev1.ExplainVerdictResponse
+	if err := protojson.Unmarshal([]byte(out), &reply); err != nil || code != exitWell || reply.GetEventId() != 4 {
+		t.Errorf("code %d, %v, %s", code, err, errs)
+	}
+}
+
+// TestAssumedResolution holds the covariances of every coordinate set against those of the
+// components of one momentum: the standard deviation along it and across it.
+func TestAssumedResolution(t *testing.T) {
+	t.Parallel()
+	const relative, angle = 0.02, 0.003
+	r := &resolution{relative, angle}
+	const x, y, z = 0.3, -0.4, 1.2
+	p := math.Sqrt(x*x + y*y + z*z)
+	pt := math.Hypot(x, y)
+	block := &kinegatev1.EventBlock{Coordinates: &kinegatev1.EventBlock_MomentumMass{MomentumMass: &kinegatev1.MomentumMassColumns{
+		PxGev: column.Float64([]float64{x}), PyGev: column.Float64([]float64{y}), PzGev: column.Float64([]float64{z}),
+	}}}
+	if err := r.fill(block); err != nil {
+		t.Fatal(err)
+	}
+	v, err := column.Float64s(block.GetCovariance().GetElements())
+	if err != nil || len(v) != 6 {
+		t.Fatalf("%v, %v", v, err)
+	}
+	quadratic := func(a, b, c float64) float64 {
+		return v[0]*a*a + v[3]*b*b + v[5]*c*c + 2*(v[1]*a*b+v[2]*a*c+v[4]*b*c)
+	}
+	theta, phi := math.Atan2(pt, z), math.Atan2(y, x)
+	angles, transverse := r.angles(p, theta, phi), r.transverse(pt, math.Asinh(z/pt), phi)
+	along := quadratic(x/p, y/p, z/p)
+	polar := quadratic(z*x/(p*pt), z*y/(p*pt), -pt/p) / (p * p)
+	azimuth := quadratic(-y/pt, x/pt, 0) / (pt * pt)
+	across := quadratic(x/pt, y/pt, 0)
+	// d eta = -d theta/sin theta
+	for name, pair := range map[string][2]float64{
+		"momentum": {along, angles[0]}, "theta": {polar, angles[3]}, "phi": {azimuth, angles[5]},
+		"transverse momentum": {across, transverse[0]}, "pseudorapidity": {polar * p * p / (pt * pt), transverse[3]}, "its phi": {azimuth, transverse[5]},
+		"pt with eta": {-polar * p / pt * z, transverse[1]},
+	} {
+		if math.Abs(pair[0]-pair[1]) > 1e-12*math.Abs(pair[0]) {
+			t.Errorf("%s: %g by components, %g", name, pair[0], pair[1])
+		}
+	}
+}
