@@ -93,6 +93,11 @@ func TestAccessIsWithdrawn(t *testing.T) {
 	if _, err := reflecting.Recv(); err != nil {
 		t.Fatal(err)
 	}
+	denied, err := reflectionpb.NewServerReflectionClient(shift).ServerReflectionInfo(t.Context())
+	if err == nil {
+		_, err = denied.Recv()
+	}
+	wantReason(t, err, api.CallerNotAllowed)
 	judging := idleJudge(t, trigger)
 
 	begun := time.Now()
