@@ -66,6 +66,7 @@ from kinegate.particle import Particle, Particles
 from kinegate.parts import BeamCandidates, ClusterPositions, Polarisation, VertexGroups, Vertices
 from kinegate.photonfield import PhotonField
 from kinegate.photonprocess import ByHelicity, PhotonProcess
+from kinegate.pulls import Pulls
 from kinegate.question import Answer, Question
 from kinegate.reaction import Reaction
 from kinegate.selection import Hypothesis, Selection, SelectionCheck, SelectionLike
@@ -144,6 +145,7 @@ __all__ = [
     "PhotonProcess",
     "Polarisation",
     "Pull",
+    "Pulls",
     "Question",
     "Range",
     "Reaction",

@@ -22,6 +22,7 @@ from kinegate.generation import GenerationLike, sample
 from kinegate.generationstream import AsyncGenerationStream
 from kinegate.judge import JudgeSettings, Protocol, Settings, pause
 from kinegate.progress import Bar
+from kinegate.pulls import accepted_rows, of_best
 from kinegate.selection import Selection, SelectionLike
 from kinegate.stubs import Stubs
 from kinegate.transport import LoopGuard, Target
@@ -33,6 +34,7 @@ if TYPE_CHECKING:
 
     from kinegate.bound import Bound
     from kinegate.explanation import Explanation
+    from kinegate.pulls import Pulls
     from kinegate.question import Question
     from kinegate.v1 import generation_pb2, verdict_pb2
     from kinegate.verdicts import Verdicts
@@ -169,6 +171,16 @@ class AsyncClient:
         """Lay the verdict on one event open; arguments as for :meth:`kinegate.Client.explain`."""
         chosen = await self.selection(selection)
         return await self.ask(chosen.explaining(events, event, most))
+
+    async def pulls(
+        self, events: Events, selection: SelectionLike, hypothesis: str, *, most: int = 1000
+    ) -> Pulls:
+        """Collect the pulls of the fits of accepted events; as :meth:`kinegate.Client.pulls`."""
+        chosen = await self.selection(selection)
+        blocks = [v.accepted async for _, v in self.judge(events, chosen, entries="none")]
+        rows = accepted_rows(blocks, hypothesis, most)
+        explained = [await self.explain(events, chosen, event=int(row)) for row in rows]
+        return of_best(hypothesis, rows, explained)
 
     async def generate(
         self,

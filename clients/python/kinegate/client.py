@@ -16,6 +16,7 @@ from kinegate.bound import bound
 from kinegate.generation import GenerationLike, sample
 from kinegate.generationstream import GenerationStream
 from kinegate.judge import JudgeSettings, Settings
+from kinegate.pulls import accepted_rows, of_best
 from kinegate.selection import Selection, SelectionLike
 from kinegate.stream import JudgeStream
 from kinegate.stubs import Stubs
@@ -28,6 +29,7 @@ if TYPE_CHECKING:
     from kinegate.bound import Bound
     from kinegate.events import Events
     from kinegate.explanation import Explanation
+    from kinegate.pulls import Pulls
     from kinegate.question import Question
     from kinegate.v1 import generation_pb2
     from kinegate.verdicts import Verdicts
@@ -244,6 +246,39 @@ class Client:
         False
         """
         return self.ask(self.selection(selection).explaining(events, event, most))
+
+    def pulls(
+        self, events: Events, selection: SelectionLike, hypothesis: str, *, most: int = 1000
+    ) -> Pulls:
+        """Collect the pulls of the fits of accepted events; one call for each of them.
+
+        Args:
+            events: A sample.
+            selection: Anything that :meth:`selection` takes.
+            hypothesis: Name of a hypothesis with a fit.
+            most: Number of accepted events after which to stop.
+
+        >>> sample = client.generate(
+        ...     {"channels": [{"reaction": "eta -> gamma gamma"}], "detector": {"calorimeter": {
+        ...         "theta": {"min_rad": 0.1, "max_rad": 3}, "stochastic": 0.03,
+        ...         "theta_sigma_rad": 0.01, "phi_sigma_rad": 0.01, "threshold_gev": 0.03}}},
+        ...     500).read()
+        >>> etas = {"name": "etas", "hypotheses": [{
+        ...     "name": "eta", "reaction": "eta -> gamma gamma",
+        ...     "fit": {"masses": [
+        ...         {"products": ["gamma[0]", "gamma[1]"], "mass_gev": 0.547862}]}}]}
+        >>> client.pulls(sample.events, etas, "eta", most=200)
+        pulls of eta in 200 events
+        parameter          pulls  mean    spread
+        gamma[0] momentum  200    ...
+        ...
+        """
+        chosen = self.selection(selection)
+        blocks = [v.accepted for _, v in self.judge(events, chosen, entries="none")]
+        rows = accepted_rows(blocks, hypothesis, most)
+        return of_best(
+            hypothesis, rows, [self.explain(events, chosen, event=int(row)) for row in rows]
+        )
 
     def generate(
         self,

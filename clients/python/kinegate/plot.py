@@ -11,6 +11,7 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 
 from kinegate.frames import needed
+from kinegate.pulls import Pulls
 from kinegate.units import DEGREE, format_energy
 
 if TYPE_CHECKING:
@@ -132,18 +133,22 @@ def dalitz(
     return axes
 
 
-def pulls(values: ArrayLike, names: Sequence[str] = (), axes: Any = None) -> Any:
+def pulls(values: ArrayLike | Pulls, names: Sequence[str] = (), axes: Any = None) -> Any:
     """Draw pulls against the unit normal distribution they should follow.
 
     Args:
-        values: Pulls of shape (events,) or (events, n); what is not finite is left out.
-        names: Names of the n.
+        values: The answer of `client.pulls`, or pulls of shape (events,) or (events, n);
+            what is not finite is left out.
+        names: Names of the n; those of the answer by default.
         axes: Where to draw.
 
     >>> kinegate.plot.pulls([[-0.3, 0.2], [1.1, -0.9]], ["E", "theta"]).get_xlabel()
     'pull'
     """
     axes = _axes(axes)
+    if isinstance(values, Pulls):
+        names = names or list(values.columns)
+        values = np.column_stack(list(values.columns.values()))
     table = np.atleast_2d(np.asarray(values, np.float64).T)
     edges = np.linspace(-5, 5, 51)
     for number, column in enumerate(table):

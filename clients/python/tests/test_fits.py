@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import asyncio
+
 import numpy as np
 import pytest
 
@@ -210,6 +212,33 @@ def test_explanations_are_those_of_the_stream(client: kinegate.Client) -> None:
         assert recorded.uncertainty == mass.uncertainties[row]
         compared += 1
     assert compared > 10
+
+
+def test_pulls_of_both_clients(client: kinegate.Client, server: kinegate.LocalServer) -> None:
+    sample = client.generate(GENERATION, 600).read().events
+    assert sample is not None
+    fit = {"masses": [{"products": PAIR, "mass_gev": 0.547862}]}
+    hypothesis = {"name": "eta", "reaction": "eta -> gamma gamma", "fit": fit}
+    selection = client.selection({"name": "etas", "hypotheses": [hypothesis]})
+    pulls = client.pulls(sample, selection, "eta", most=150)
+    assert len(pulls.rows) == 150
+    assert len(pulls.columns) == 6
+    # Energies of photons carry a mass fit; 150 pulls: spread 1 within 5/sqrt(2 * 150).
+    assert abs(np.nanstd(pulls.columns["gamma[0] momentum"]) - 1) < 0.3
+    assert len(kinegate.plot.pulls(pulls).get_legend().get_texts()) == 7
+    assert "<table>" in pulls._repr_html_()
+
+    async def again() -> kinegate.Pulls:
+        gate = server.gate_address
+        async with kinegate.connect_async(server.address, gate_address=gate) as aio:
+            return await aio.pulls(sample, selection, "eta", most=150)
+
+    other = asyncio.run(again())
+    assert (other.rows == pulls.rows).all()
+    for name, column in pulls.columns.items():
+        assert np.array_equal(other.columns[name], column, equal_nan=True)
+    with pytest.raises(KeyError, match="known: eta"):
+        client.pulls(sample, selection, "omega")
 
 
 def test_an_event_must_be_there(client: kinegate.Client) -> None:
