@@ -117,7 +117,8 @@ class _Stream:
 
     def _took(self, frame: Any) -> Generated | None:
         self._waiting_since = 0.0
-        self._silent_tries = 0
+        if not frame.HasField("header"):
+            self._silent_tries = 0
         found = self._sample.take(frame)
         if self._bar and frame.HasField("block"):
             self._bar.add(frame.block.event_count)
@@ -172,9 +173,12 @@ class GenerationStream(_Stream):
                 watched[:] = [call]
                 try:
                     for frame in call:
-                        since = time.monotonic()
                         if (found := self._took(frame)) is not None:
                             yield found
+                        # A header alone is no progress: it comes again with every try. What
+                        # the caller does with a block takes nothing from its patience.
+                        if not frame.HasField("header"):
+                            since = time.monotonic()
                         self._wait()
                 except grpc.RpcError as error:
                     self._failed(error, since)
@@ -230,9 +234,12 @@ class AsyncGenerationStream(_Stream):
                 watch = asyncio.create_task(self._watch(call))
                 try:
                     async for frame in call:
-                        since = time.monotonic()
                         if (found := self._took(frame)) is not None:
                             yield found
+                        # A header alone is no progress: it comes again with every try. What
+                        # the caller does with a block takes nothing from its patience.
+                        if not frame.HasField("header"):
+                            since = time.monotonic()
                         self._wait()
                 except grpc.aio.AioRpcError as error:
                     self._failed(error, since)
