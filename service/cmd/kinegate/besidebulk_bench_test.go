@@ -1,6 +1,7 @@
 package main
 
 import (
+	"bufio"
 	"context"
 	"crypto/ecdsa"
 	"crypto/elliptic"
@@ -12,10 +13,12 @@ import (
 	"io"
 	"math/big"
 	"os"
+	"os/exec"
 	"path/filepath"
 	"slices"
 	"sync"
 	"sync/atomic"
+	"syscall"
 	"testing"
 	"time"
 
@@ -28,28 +31,20 @@ import (
 
 // BenchmarkGateBesideBulk compares the latency of verdicts, over TLS at a tenth of the
 // load, alone and while callers of every kind of bulk work keep the other listener busy.
-// The two alternate, so that both see the same machine.
+// The two alternate, so that both see the same machine. The callers are a process of their
+// own, which gives way to the others: as a rule they are other machines.
 func BenchmarkGateBesideBulk(b *testing.B) {
 	const rounds = 4
 	certificate, key := selfSigned(b)
 	g := startGate(b, "--certificate-file", certificate, "--key-file", key)
-	client := func(where string) *kinegate.Client {
-		c, err := kinegate.Dial(where, kinegate.Options{TLS: true, CAFile: certificate, ServerName: "localhost"})
-		if err != nil {
-			b.Fatal(err)
-		}
-		b.Cleanup(func() { _ = c.Close() })
-		return c
-	}
 	block := sixPhotons(perLatencyBlock)
-	stream := openGate(b, client(g.where["gate"]))
-	general := client(g.where["general"])
+	stream := openGate(b, secured(b, g.where["gate"], certificate))
 	for b.Loop() {
 		rate := saturation(b, stream, block) / 10
 		var alone, beside []time.Duration
 		for range rounds {
 			alone = append(alone, openLoop(b, stream, block, rate, int(rate))...)
-			calm := saturate(b, general)
+			calm := saturate(b, g.where["general"], certificate)
 			beside = append(beside, openLoop(b, stream, block, rate, int(rate))...)
 			calm()
 		}
@@ -63,36 +58,79 @@ func BenchmarkGateBesideBulk(b *testing.B) {
 	}
 }
 
-// saturate keeps the general listener busy with whole blocks, simulated events, searches
-// for channels and curves until calm is called, which fails if a kind was never answered.
-func saturate(b *testing.B, general *kinegate.Client) (calm func()) {
+// secured is a client over TLS of a server with its own certificate.
+func secured(t testing.TB, where, certificate string) *kinegate.Client {
+	t.Helper()
+	c, err := kinegate.Dial(where, kinegate.Options{TLS: true, CAFile: certificate, ServerName: "localhost"})
+	if err != nil {
+		t.Fatal(err)
+	}
+	t.Cleanup(func() { _ = c.Close() })
+	return c
+}
+
+// Variables that make a process of the tests the callers.
+const (
+	bulkAddress     = "BULK_ADDRESS"
+	bulkCertificate = "BULK_CERTIFICATE"
+)
+
+// saturate starts callers that keep a listener busy until calm is called, and returns when
+// each kind of work has been answered once.
+func saturate(b *testing.B, where, certificate string) (calm func()) {
 	b.Helper()
-	ctx, cancel := context.WithCancel(b.Context())
-	var busy sync.WaitGroup
-	work := bulkWork(general)
-	answered := make([]atomic.Int64, len(work))
-	for i, do := range work {
-		busy.Go(func() {
-			for ctx.Err() == nil {
-				switch err := do(ctx); {
+	self, err := os.Executable()
+	if err != nil {
+		b.Fatal(err)
+	}
+	callers := exec.CommandContext(b.Context(), self, "-test.run", "^TestBulkCallers$") //nolint:gosec // this very program
+	callers.Env = append(os.Environ(), bulkAddress+"="+where, bulkCertificate+"="+certificate)
+	out, err := callers.StdoutPipe()
+	if err != nil {
+		b.Fatal(err)
+	}
+	if err := callers.Start(); err != nil {
+		b.Fatal(err)
+	}
+	const low = 10
+	_ = syscall.Setpriority(syscall.PRIO_PROCESS, callers.Process.Pid, low) // else they are in the way
+	lines := bufio.NewScanner(out)
+	for lines.Scan() && lines.Text() != "busy" {
+	}
+	if lines.Err() != nil || lines.Text() != "busy" {
+		b.Fatalf("the callers said %q: %v", lines.Text(), lines.Err())
+	}
+	return func() {
+		_ = callers.Process.Kill()
+		_ = callers.Wait() // it was killed
+	}
+}
+
+// TestBulkCallers is the body of the callers' process, and does nothing by itself.
+func TestBulkCallers(t *testing.T) {
+	where := os.Getenv(bulkAddress)
+	if where == "" {
+		t.Skip("a part of BenchmarkGateBesideBulk")
+	}
+	general := secured(t, where, os.Getenv(bulkCertificate))
+	var answered, all sync.WaitGroup
+	for i, do := range bulkWork(general) {
+		answered.Add(1)
+		all.Go(func() {
+			for first := sync.OnceFunc(answered.Done); ; {
+				switch err := do(t.Context()); {
 				case err == nil:
-					answered[i].Add(1)
-				case ctx.Err() == nil && status.Code(err) != codes.Unavailable:
-					b.Errorf("bulk work %d: %v", i, err)
+					first()
+				case status.Code(err) != codes.Unavailable:
+					t.Errorf("bulk work %d: %v", i, err)
 					return
 				}
 			}
 		})
 	}
-	return func() {
-		cancel()
-		busy.Wait()
-		for i := range answered {
-			if answered[i].Load() == 0 {
-				b.Logf("bulk work %d was never answered", i)
-			}
-		}
-	}
+	answered.Wait()
+	_, _ = os.Stdout.WriteString("busy\n") // the reader notices a loss
+	all.Wait()
 }
 
 // bulkWork is one call of each kind of work that takes long, of the first one twice.
