@@ -230,7 +230,6 @@ class Protocol:
         kind = response.WhichOneof("frame")
         if kind == "opened":
             self._opened(response.opened)
-            self._progress = now
         elif kind == "draining":
             self.draining = True
         elif kind == "heartbeat":
@@ -238,6 +237,9 @@ class Protocol:
         elif kind == "verdict":
             self._progress = now
             return self._answered(response.verdict)
+        if kind != "opened" and self._sent == 0:
+            # Nothing is wanted of the server: patience is for answers that do not come.
+            self._progress = now
         return None
 
     def _opened(self, opened: selection_pb2.JudgeOpened) -> None:

@@ -129,6 +129,26 @@ def test_nothing_is_sent_to_a_server_that_leaves() -> None:
     assert protocol.outgoing(0.3) is None
 
 
+def test_patience_is_for_answers_that_do_not_come() -> None:
+    beat = selection_pb2.JudgeResponse(heartbeat=selection_pb2.Heartbeat())
+    protocol = started(blocks=1)
+    protocol.incoming(opened(), 0.1)
+    assert sent(protocol) == [0]
+    protocol.incoming(verdict(0), 0.2)
+    # An hour without events and with a server that is alive uses no patience up.
+    protocol.incoming(beat, 3600.0)
+    protocol.fail_if_hopeless(None, "here", 3601.0)
+    # A server that opens and beats but never answers does.
+    protocol.add(block())
+    for now in (3610.0, 3640.0, 3660.0):
+        protocol.connect(now)
+        protocol.incoming(opened(), now)
+        assert sent(protocol, now) == [1]
+        protocol.incoming(beat, now + 1)
+    with pytest.raises(StreamBroken, match="no verdict from here for 60 s"):
+        protocol.fail_if_hopeless(None, "here", 3661.5)
+
+
 def test_end() -> None:
     protocol = started(blocks=1)
     protocol.incoming(opened(), 0.1)
