@@ -107,12 +107,12 @@ func (b bounded) Accept() (net.Conn, error) {
 // placed is a connection that gives its place back when it is closed.
 type placed struct {
 	net.Conn
+	strikes
 
 	places *places
 	since  time.Time
 	user   string // number of the user at the other end of a unix socket; empty where it cannot be told
 	once   sync.Once
-	strikes
 }
 
 // RemoteAddr is the address of the peer, through which calls find their connection.

@@ -117,7 +117,9 @@ func TestFullQueueRefusesAtTheDoor(t *testing.T) {
 		t.Errorf("%g refusals are counted", n)
 	}
 	cancel()
-	<-waiting
+	if err := <-waiting; !errors.Is(err, context.Canceled) {
+		t.Errorf("the one that waited: %v", err)
+	}
 	q.leave(api.SlotShares)
 	if err := generate(); err != nil {
 		t.Errorf("with room: %v", err)

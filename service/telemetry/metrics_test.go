@@ -15,7 +15,7 @@ import (
 	dto "github.com/prometheus/client_model/go"
 )
 
-var update = flag.Bool("update", false, "rewrite testdata/metrics.txt")
+var update = flag.Bool("update", false, "rewrite testdata/metrics.txt and deploy/metrics.md")
 
 // used returns metrics that have seen one of everything, with their registry.
 func used(t *testing.T) (*Metrics, *prometheus.Registry) {
@@ -48,14 +48,18 @@ func used(t *testing.T) (*Metrics, *prometheus.Registry) {
 	return m, registry
 }
 
-// TestMetricsAreAContract compares names, types, labels and help with the golden list:
-// alerts and dashboards rest on them.
+// TestMetricsAreAContract compares names, types, labels and help with the golden list and
+// the operator's page: alerts and dashboards rest on them.
 func TestMetricsAreAContract(t *testing.T) {
 	_, registry := used(t)
 	families, err := registry.Gather()
 	if err != nil {
 		t.Fatal(err)
 	}
+	var page strings.Builder
+	page.WriteString("<!-- Made by `go test ./service/telemetry -update`. -->\n# Metrics\n\n" +
+		"What `/metrics` shows beside the metrics of the Go runtime, of the process and of the page itself.\n\n" +
+		"| metric | type | labels | |\n| --- | --- | --- | --- |\n")
 	var got []string
 	for _, f := range families {
 		var labels []string
@@ -67,19 +71,22 @@ func TestMetricsAreAContract(t *testing.T) {
 		}
 		got = append(got, fmt.Sprintf("%s %s {%s}: %s", f.GetName(), strings.ToLower(f.GetType().String()),
 			strings.Join(labels, ","), f.GetHelp()))
+		fmt.Fprintf(&page, "| `%s` | %s | %s | %s |\n", f.GetName(), strings.ToLower(f.GetType().String()),
+			strings.Join(labels, ", "), f.GetHelp())
 	}
-	text := strings.Join(got, "\n") + "\n"
-	if *update {
-		if err := os.WriteFile("testdata/metrics.txt", []byte(text), 0o600); err != nil {
+	for path, text := range map[string]string{"testdata/metrics.txt": strings.Join(got, "\n") + "\n", "../../deploy/metrics.md": page.String()} {
+		if *update {
+			if err := os.WriteFile(path, []byte(text), 0o600); err != nil {
+				t.Fatal(err)
+			}
+		}
+		golden, err := os.ReadFile(path)
+		if err != nil {
 			t.Fatal(err)
 		}
-	}
-	golden, err := os.ReadFile("testdata/metrics.txt")
-	if err != nil {
-		t.Fatal(err)
-	}
-	if text != string(golden) {
-		t.Errorf("differs from testdata/metrics.txt:\n%s", text)
+		if text != string(golden) {
+			t.Errorf("differs from %s:\n%s", path, text)
+		}
 	}
 	problems, err := promlint.NewWithMetricFamilies(families).Lint()
 	if err != nil || len(problems) > 0 {

@@ -182,7 +182,7 @@ func reset(framer *http2.Framer, n int) error {
 	} {
 		_ = encoder.WriteField(hpack.HeaderField{Name: field[0], Value: field[1]})
 	}
-	id := uint32(2*n + 1) //nolint:gosec // not so many
+	id := uint32(2*n + 1)
 	return errors.Join(
 		framer.WriteHeaders(http2.HeadersFrameParam{StreamID: id, BlockFragment: []byte(block.String()), EndHeaders: true}),
 		framer.WriteRSTStream(id, http2.ErrCodeCancel))

@@ -29,7 +29,8 @@ func TestRunbook(t *testing.T) {
 	}
 	folder := t.TempDir()
 	ports := freePorts(t)
-	script := prepareRunbook(t, folder, ports)
+	var script strings.Builder
+	script.WriteString(prepareRunbook(t, folder, ports))
 	commands := 0
 	for _, block := range regexp.MustCompile("(?s)```sh\n(.*?)```").FindAllStringSubmatch(string(page), -1) {
 		for line := range strings.Lines(block[1]) {
@@ -37,7 +38,7 @@ func TestRunbook(t *testing.T) {
 			for i, port := range ports {
 				line = strings.ReplaceAll(line, fmt.Sprintf("127.0.0.1:%d", 8470+i), fmt.Sprintf("127.0.0.1:%d", port))
 			}
-			script += "echo '+' " + "'" + strings.ReplaceAll(strings.TrimSpace(line), "'", "'\\''") + "'\n" + line
+			fmt.Fprintf(&script, "echo '+ %s'\n%s", strings.ReplaceAll(strings.TrimSpace(line), "'", "'\\''"), line)
 		}
 	}
 	if commands < 15 {
@@ -45,7 +46,7 @@ func TestRunbook(t *testing.T) {
 	}
 	ctx, cancel := context.WithTimeout(t.Context(), runbookTime)
 	defer cancel()
-	shell := exec.CommandContext(ctx, "bash", "-c", script) //nolint:gosec // the page's own commands
+	shell := exec.CommandContext(ctx, "bash", "-c", script.String()) //nolint:gosec // the page's own commands
 	shell.Dir = folder
 	shell.WaitDelay = time.Second
 	out, err := shell.CombinedOutput()
@@ -85,13 +86,14 @@ func prepareRunbook(t *testing.T, folder string, ports [4]int) (beginning string
 	if err := os.Symlink("certificates-old", filepath.Join(folder, "certificates")); err != nil {
 		t.Fatal(err)
 	}
-	settings := "log_level: info\ndrain_notice: 200ms\naccess_file: access\n" +
-		"certificate_file: certificates/tls.crt\nkey_file: certificates/tls.key\nclient_ca_file: certificates/ca.crt\n"
+	var settings strings.Builder
+	settings.WriteString("log_level: info\ndrain_notice: 200ms\naccess_file: access\n" +
+		"certificate_file: certificates/tls.crt\nkey_file: certificates/tls.key\nclient_ca_file: certificates/ca.crt\n")
 	for i, name := range []string{"gate", "general", "health", "metrics"} {
-		settings += fmt.Sprintf("%s_address: 127.0.0.1:%d\n", name, ports[i])
+		fmt.Fprintf(&settings, "%s_address: 127.0.0.1:%d\n", name, ports[i])
 	}
 	access := "spiffe://marrow-hall.example.org/trigger kinegate.v1.SelectionService/Judge\nspiffe://marrow-hall.example.org/shift *\n"
-	for name, text := range map[string]string{"kinegate.yaml": settings, "access": access} {
+	for name, text := range map[string]string{"kinegate.yaml": settings.String(), "access": access} {
 		if err := os.WriteFile(filepath.Join(folder, name), []byte(text), 0o600); err != nil {
 			t.Fatal(err)
 		}
