@@ -18,6 +18,7 @@ import (
 	kinegate "example.org/kinegate/clients/go"
 	"example.org/kinegate/clients/go/history"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+	"example.org/kinegate/service/api"
 )
 
 // line is a network line to a listener in memory that can fail in the ways of real ones.
@@ -83,6 +84,16 @@ func (l *line) swallow() {
 	}
 }
 
+// freeze lets nobody read from the open connections for a while, as a stopped process
+// does not.
+func (l *line) freeze(d time.Duration) {
+	l.mu.Lock()
+	defer l.mu.Unlock()
+	for _, w := range l.conns {
+		w.until.Store(time.Now().Add(d).UnixNano())
+	}
+}
+
 // count is the number of connections made.
 func (l *line) count() int {
 	l.mu.Lock()
@@ -90,16 +101,18 @@ func (l *line) count() int {
 	return l.dials
 }
 
-// wire is a connection that can fall silent.
+// wire is a connection that can fall silent, or be read no more.
 type wire struct {
 	net.Conn
 
 	silent atomic.Bool
+	until  atomic.Int64 // frozen until then, in ns
 }
 
 // Read loses what comes while the wire is silent.
 func (w *wire) Read(p []byte) (int, error) {
 	for {
+		time.Sleep(time.Duration(w.until.Load() - time.Now().UnixNano()))
 		n, err := w.Conn.Read(p)
 		if err != nil || !w.silent.Load() {
 			return n, err
@@ -225,6 +238,40 @@ func TestHistoryAcrossCancels(t *testing.T) {
 	}
 	if faults := c.Faults(true); len(faults) > 0 || streams < 5 {
 		t.Errorf("%d streams: %v", streams, faults)
+	}
+}
+
+// TestHistoryAcrossStalls has a caller that takes no verdicts for a while, which the
+// client's queue bears, and then one whose process reads nothing at all: the server cuts
+// it off, and it comes back.
+func TestHistoryAcrossStalls(t *testing.T) {
+	const events, perBlock, stall = 40000, 2000, 2500 * time.Millisecond
+	r := start(t, func(o *Options, _ *Deps) { o.StallLimit = time.Second })
+	cutOff := func() float64 { return r.metric(t, "kinegate_judge_streams_closed_total", string(api.StreamStalled)) }
+	for _, c := range []struct {
+		name string
+		cuts float64
+		stop func(l *line)
+	}{
+		{"takes no verdicts", 0, func(*line) { time.Sleep(stall) }},
+		{"reads nothing", 1, func(l *line) { l.freeze(stall) }},
+	} {
+		t.Run(c.name, func(t *testing.T) {
+			checker := learned(t, r, history.AllEntries(), events)
+			l := r.gateLine()
+			before, answered := cutOff(), 0
+			verify(t, checker, history.Run{
+				Client: r.client(t, l.through), Open: history.AllEntries(), Events: events, PerBlock: perBlock,
+				Answered: func(*kinegatev1.VerdictBlock) {
+					if answered++; answered == 3 {
+						c.stop(l)
+					}
+				},
+			})
+			if got := cutOff() - before; got != c.cuts {
+				t.Errorf("the server cut off %v streams, not %v", got, c.cuts)
+			}
+		})
 	}
 }
 
