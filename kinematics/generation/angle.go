@@ -166,7 +166,7 @@ func comptonVersine(s *random.Stream, lowest float64) float64 {
 }
 
 // azimuth is the angle in (-pi, pi) at the fraction u of a turn.
-func azimuth(u float64) float64 { return 2 * math.Pi * (u - 0.5) }
+func azimuth(u float64) float64 { return float64(2 * math.Pi * (u - 0.5)) }
 
 // around is the direction at polar angle theta and azimuth phi around an axis.
 // The azimuth counts from the x axis of the frame, projected across the axis,
