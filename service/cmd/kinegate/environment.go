@@ -131,10 +131,12 @@ func (e *environment) reach(ctx context.Context, address string, client *kinegat
 		}
 		reached <- err
 	}()
+	quiet := time.NewTimer(quietReach)
+	defer quiet.Stop()
 	select {
 	case err := <-reached:
 		return err
-	case <-time.After(quietReach):
+	case <-quiet.C:
 	}
 	_, _ = fmt.Fprintf(e.err, "kinegate: waiting for a server at %s, up to %s\n", address, e.timeout)
 	return <-reached

@@ -33,11 +33,11 @@ func serveRemote(t testing.TB) *remote {
 	r := &remote{t: t, namespace: "gate" + strconv.Itoa(n)}
 	near, far := "gn"+strconv.Itoa(n), "gf"+strconv.Itoa(n)
 	network := fmt.Sprintf("10.%d.%d.", 64+n>>8, n&255)
-	if out, err := exec.CommandContext(t.Context(), "ip", "netns", "add", r.namespace).CombinedOutput(); err != nil {
+	if out, err := exec.CommandContext(t.Context(), "ip", "netns", "add", r.namespace).CombinedOutput(); err != nil { //nolint:gosec // our own name
 		t.Skipf("no network namespaces here: %v: %s", err, out)
 	}
 	// The test's context has ended by then, and the line goes with the namespace.
-	t.Cleanup(func() { _ = exec.Command("ip", "netns", "delete", r.namespace).Run() }) //nolint:noctx,gosec // see above
+	t.Cleanup(func() { _ = exec.Command("ip", "netns", "delete", r.namespace).Run() }) //nolint:gosec // see above
 	r.must("ip", "link", "add", near, "type", "veth", "peer", "name", far, "netns", r.namespace)
 	r.must("ip", "address", "add", network+"1/24", "dev", near)
 	r.must("ip", "link", "set", near, "up")
@@ -64,7 +64,7 @@ func serveRemote(t testing.TB) *remote {
 
 func (r *remote) must(name string, arguments ...string) {
 	r.t.Helper()
-	if out, err := exec.CommandContext(r.t.Context(), name, arguments...).CombinedOutput(); err != nil {
+	if out, err := exec.CommandContext(r.t.Context(), name, arguments...).CombinedOutput(); err != nil { //nolint:gosec // those of the tests
 		r.t.Fatalf("%s %s: %v: %s", name, strings.Join(arguments, " "), err, out)
 	}
 }
