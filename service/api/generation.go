@@ -189,6 +189,7 @@ func faultsOrError(err error) ([]*kinegatev1.FieldFault, error) {
 type compiledGeneration struct {
 	generator *generation.Generator
 	detector  *detector.Detector // nil for the truth alone
+	displaced bool               // the detector finds displaced vertices
 	digest    string
 	outline   []*kinegatev1.GenerationOutline
 }
@@ -219,7 +220,7 @@ func (s *generationService) compile(ctx context.Context, m *kinegatev1.Generatio
 // compileGeneration gives up, with whatever it found, when stop returns true.
 func compileGeneration(m *kinegatev1.Generation, table *particle.Table, stop func() bool) (*compiledGeneration, fault.List) {
 	form := newGenerationForm(m, table)
-	c := &compiledGeneration{outline: form.outline}
+	c := &compiledGeneration{outline: form.outline, displaced: m.GetDetector().GetDisplaced() != nil}
 	faults := form.faults
 	if m.GetDetector() != nil {
 		var found fault.List

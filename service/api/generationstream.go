@@ -34,6 +34,7 @@ type generationStream struct {
 	next, end int64
 	perBlock  int
 	truthless bool
+	displaced bool
 	lastSent  time.Time
 	work      *spell
 	seen      int64
@@ -54,7 +55,7 @@ func newGenerationStream(
 	g := &generationStream{
 		service: s, stream: stream, worker: c.generator.NewWorker(), detector: c.detector,
 		next: request.GetFirstEvent(), end: request.GetFirstEvent() + request.GetEventCount(),
-		perBlock: int(request.GetBlockEventCount()), truthless: request.GetWithoutTruth(),
+		perBlock: int(request.GetBlockEventCount()), truthless: request.GetWithoutTruth(), displaced: c.displaced,
 	}
 	if g.perBlock == 0 {
 		g.perBlock = event.MaxEvents
@@ -173,7 +174,8 @@ func (g *generationStream) turn(ctx context.Context, size int) (grown int, full 
 func (g *generationStream) lastSize() int {
 	const (
 		eventTruth, particleTruth, candidateTruth          = 110, 83, 16
-		eventMeasured, objectMeasured, candidateMeasured   = 124, 141, 24
+		eventMeasured, objectMeasured, candidateMeasured   = 124, 101, 24
+		groupOfObject                                      = 40 // of a displaced vertex for every two objects
 		frame                                              = 1024
 		noiseClusters, objectsPerParticle, columnAllowance = 2, 2, 8
 	)
@@ -196,6 +198,9 @@ func (g *generationStream) lastSize() int {
 		if !t.Decayed[row] {
 			objects += objectsPerParticle
 		}
+	}
+	if g.displaced {
+		size += groupOfObject * objects
 	}
 	return size + eventMeasured + objectMeasured*objects + candidateMeasured*candidates + columnAllowance
 }
