@@ -88,8 +88,24 @@ func numberHint(value string) string {
 		return "; the minus sign is written -"
 	case blank && digits(number) && !digits(rest):
 		return "; the unit is that of the field's name and is not written"
+	case strings.HasSuffix(value, "%"):
+		return "; a share is written as a number, such as 0.01"
 	case digits(value) && (strings.HasPrefix(value, ".") || strings.HasSuffix(value, ".")):
 		return "; digits stand on both sides of the point"
+	}
+	return ""
+}
+
+// wordHint names the value that a word stands for, where it is part of one value alone.
+func wordHint(word string, names []string) string {
+	var meant []string
+	for _, name := range names {
+		if word != "" && strings.Contains(name+"_", "_"+strings.ToUpper(word)+"_") {
+			meant = append(meant, name)
+		}
+	}
+	if len(meant) == 1 {
+		return "; write " + meant[0]
 	}
 	return ""
 }
@@ -156,8 +172,8 @@ func nearest(name string, names []string) []string {
 	best, near := len(name)/3+1, []string(nil)
 	for _, candidate := range names {
 		distance := edits(folded(name), folded(candidate))
-		if stem := strings.LastIndexByte(name, '_'); stem > 0 && strings.HasPrefix(candidate, name[:stem+1]) {
-			distance = min(distance, 1) // the same but for the unit
+		if sameButUnit(name, candidate) {
+			distance = min(distance, 1)
 		}
 		switch {
 		case distance < best:
@@ -167,6 +183,16 @@ func nearest(name string, names []string) []string {
 		}
 	}
 	return near
+}
+
+// sameButUnit tells whether two names differ in what follows their last underscore, or in
+// having that at all.
+func sameButUnit(a, b string) bool {
+	if strings.HasPrefix(a, b+"_") || strings.HasPrefix(b, a+"_") {
+		return true
+	}
+	stem := strings.LastIndexByte(a, '_')
+	return stem > 0 && strings.HasPrefix(b, a[:stem+1])
 }
 
 // folded is a name without what differs between styles of writing it.

@@ -135,6 +135,10 @@ func TestHintsOnCommonSlips(t *testing.T) {
 		{"a wide blank", "  - condition", "  - name: a\n\u00a0\u00a0  condition", "3:1", `plain blanks, found '\u00a0'`},
 		{"a brace open", "0.1}}}", "0.1}}", "2:1", "is not closed"},
 		{"a dash lacking", "  - condition", "  name: a\n    condition", "3:1", `a "-" may be missing`},
+		{"a unit lacking", "min_gev", "min", "2:60", "nearest: min_gev"},
+		{"a unit too many", "invariant_mass: {products: [pi0], min_gev: 0.1}", "fit_probability: {min_gev: 0.1}", "2:44", "nearest: min"},
+		{"a percentage", "0.1}", "1%}", "2:69", "such as 0.01"},
+		{"a word for a value", "- condition:", "- role: veto\n    condition:", "2:11", "write ROLE_VETO"},
 		{"a quote open", "[pi0]", "[\"pi0]", "2:1", "a quote that opens here"},
 	} {
 		t.Run(c.name, func(t *testing.T) {

@@ -103,7 +103,7 @@ func enumValue(n *yaml.Node, values protoreflect.EnumValueDescriptors) (value pr
 			names = append(names, string(v.Name()))
 		}
 	}
-	return value, "one of " + strings.Join(names, ", ") + " is needed, found " + describe(n)
+	return value, "one of " + strings.Join(names, ", ") + " is needed, found " + describe(n) + wordHint(n.Value, names)
 }
 
 // describe names what stands at a node, cut to a readable length.
