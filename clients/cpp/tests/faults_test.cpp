@@ -1,7 +1,6 @@
 // Streams while servers are killed, frozen, restarted and cut off: no gap, no duplicate, no
 // reorder, the bits of an uninterrupted run, and a stall noticed within 3.5 s.
 #include <gtest/gtest.h>
-#include <unistd.h>
 
 #include <memory>
 #include <thread>
@@ -119,7 +118,8 @@ TEST_F(Faults, RollingRestartOfThree) {
 // Host is a network namespace with one end of a cable to this one.
 class Host {
  public:
-  Host() : name_("kg" + std::to_string(::getpid())) {
+  Host() {
+    Run("ip netns del " + name_);  // of a test that was killed
     const std::string inside = "ip -n " + name_;
     made_ = Run("ip netns add " + name_) &&
             Run("ip link add " + name_ + "a type veth peer name " + name_ + "b netns " + name_) &&
@@ -140,7 +140,7 @@ class Host {
   }
 
  private:
-  std::string name_;
+  const std::string name_ = "kinegate";
   bool made_ = false;
 };
 

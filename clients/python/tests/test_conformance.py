@@ -1,7 +1,7 @@
 """The cases of testdata/rpc: calls against a server, and streams against a double of one.
 
 The double is the Go program clients/go/conformance/double: that of the environment variable
-KINEGATE_DOUBLE, else built here where there is Go.
+DOUBLE_PROGRAM, else built here where there is Go.
 """
 
 from __future__ import annotations
@@ -112,10 +112,10 @@ def test_calls_can_fail() -> None:
 @pytest.fixture(scope="module")
 def double() -> str:
     """The program that plays a server."""
-    if found := os.environ.get("KINEGATE_DOUBLE"):
+    if found := os.environ.get("DOUBLE_PROGRAM"):
         return found
     go = shutil.which("go")
-    assert go, "neither KINEGATE_DOUBLE nor go is there"
+    assert go, "neither DOUBLE_PROGRAM nor go is there"
     made = ROOT / "build" / "double"
     command = [go, "build", "-o", str(made), "./clients/go/conformance/double"]
     subprocess.run(command, cwd=ROOT, check=True)  # our own program
