@@ -179,7 +179,7 @@ func TestExamplesShowEveryField(t *testing.T) {
 		t.Fatalf("no examples: %v", err)
 	}
 	// These are judged with measured events, here and by the examples of README.md.
-	judged := []string{"mass-from-event.yaml", "dimuon.yaml", "four-lepton.yaml"}
+	judged := []string{"mass-from-event.yaml", "dimuon.yaml", "four-lepton.yaml", "four-lepton-fit.yaml"}
 	for name := range exampleSamples() {
 		judged = append(judged, name)
 	}
