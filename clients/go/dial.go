@@ -58,7 +58,8 @@ const ServiceConfig = `{
         {"service": "kinegate.v1.GenerationService", "method": "CheckDetector"},
         {"service": "kinegate.v1.GenerationService", "method": "MeasureBound"},
         {"service": "kinegate.v1.SelectionService", "method": "CheckSelection"},
-        {"service": "kinegate.v1.SelectionService", "method": "JudgeBlock"}
+        {"service": "kinegate.v1.SelectionService", "method": "JudgeBlock"},
+        {"service": "kinegate.v1.SelectionService", "method": "ExplainVerdict"}
       ],
       "waitForReady": true,
       "timeout": "10s",
