@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"os"
 	"path/filepath"
+	"strings"
 	"testing"
 
 	"example.org/kinegate/kinematics"
@@ -28,7 +29,8 @@ func TestGoldenGenerateEvents(t *testing.T) {
 		Product: "K+", Polar: &kinegatev1.ProductionAngle_SlopePerGev2{SlopePerGev2: 2}, BeamAsymmetry: -0.6,
 	}
 	s := newServices(t)
-	text := fmt.Sprintf("numerics %d\n", kinematics.NumericsVersion)
+	var lines strings.Builder
+	_, _ = fmt.Fprintf(&lines, "numerics %d\n", kinematics.NumericsVersion)
 	for _, c := range []struct {
 		name       string
 		generation *kinegatev1.Generation
@@ -48,8 +50,9 @@ func TestGoldenGenerateEvents(t *testing.T) {
 			}
 			digest = got
 		}
-		text += fmt.Sprintf("%s %d events %s\n", c.name, events, digest)
+		_, _ = fmt.Fprintf(&lines, "%s %d events %s\n", c.name, events, digest)
 	}
+	text := lines.String()
 	if *update {
 		if err := os.MkdirAll(filepath.Dir(file), 0o750); err != nil {
 			t.Fatal(err)

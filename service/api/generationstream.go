@@ -101,7 +101,7 @@ func (g *generationStream) send(m *kinegatev1.GenerateEventsResponse) error {
 	}
 	if connection := g.service.deps.Connection(g.stream.Context()); connection.Close != nil {
 		connection.Close()
-		<-sent // only its end matters
+		<-sent //nolint:errcheck // only its end matters
 	}
 	next := strconv.FormatInt(g.next, 10)
 	return Refuse(StreamStalled, "the caller took no event for "+limit.String()+"; the slice goes on from event "+next, "next_event", next)

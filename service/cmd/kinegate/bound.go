@@ -61,7 +61,7 @@ func (b *boundRun) run(ctx context.Context, reactions []string) error {
 	t := text.NewTable("reaction", ">largest", ">mean", ">bound", ">share kept")
 	for i, c := range generation.GetChannels() {
 		reply, err := client.Generation.MeasureBound(ctx, &kinegatev1.MeasureBoundRequest{
-			Generation: generation, ChannelIndex: int32(i), DrawCount: b.draws, //nolint:gosec // at most 64
+			Generation: generation, ChannelIndex: int32(i), DrawCount: b.draws,
 		})
 		if err != nil {
 			if len(reactions) == 1 {

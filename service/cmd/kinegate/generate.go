@@ -67,6 +67,9 @@ func (g *generateRun) asked(reactions []string) error {
 	if (len(reactions) == 0) == (g.requestFile == "") {
 		return badInput("name a reaction, or a file with --request; one or the other")
 	}
+	if g.bound != 0 && g.requestFile != "" {
+		return badInput("--bound is for a reaction named here; a file of --request has its own")
+	}
 	return nil
 }
 
@@ -140,16 +143,10 @@ func (g *generateRun) generation(ctx context.Context, client *kinegate.Client, r
 			return nil, err
 		}
 	} else {
-		for _, text := range reactions {
-			m.Channels = append(m.Channels, &kinegatev1.GenerationChannel{Reaction: text})
-		}
-		if g.bound != 0 {
-			if len(reactions) > 1 {
-				return nil, badInput("--bound is of one reaction; with several write a file for --request")
-			}
-			m.Channels[0].Bound = &g.bound
-		}
 		var err error
+		if m.Channels, err = g.channels(reactions); err != nil {
+			return nil, err
+		}
 		if m.InitialState, err = g.initialState(reactions[0]); err != nil {
 			return nil, err
 		}
@@ -171,6 +168,22 @@ func (g *generateRun) generation(ctx context.Context, client *kinegate.Client, r
 	}
 	m.Detector = reply.GetDetector()
 	return m, g.faults(g.detectorFile, reply.GetFaults())
+}
+
+// channels are reactions with equal shares.
+func (g *generateRun) channels(reactions []string) ([]*kinegatev1.GenerationChannel, error) {
+	list := make([]*kinegatev1.GenerationChannel, 0, len(reactions))
+	for _, text := range reactions {
+		list = append(list, &kinegatev1.GenerationChannel{Reaction: text})
+	}
+	switch {
+	case g.bound == 0:
+		return list, nil
+	case len(reactions) > 1:
+		return nil, badInput("--bound is of one reaction; with several write a file for --request")
+	}
+	list[0].Bound = &g.bound
+	return list, nil
 }
 
 // readGeneration reads the generation file on the server.

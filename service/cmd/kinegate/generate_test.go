@@ -231,6 +231,7 @@ func TestBound(t *testing.T) {
 	wantCommand(t, `bound "gamma p -> p eta" --beam "1 GeV" --draws 0`, exitUsage, "--draws 0")
 	wantCommand(t, `generate "gamma p -> p pi+ pi- pi0" --beam "2 GeV" --bound 0.12 --events 300`, exitWell, "overflows             0")
 	wantCommand(t, `generate "gamma p -> p pi+ pi- pi0" --beam "2 GeV" --bound 0.05 --events 300`, exitWell, "A bound larger by this factor has none")
+	wantCommand(t, `generate --bound 0.5 --request `+generation, exitUsage, "has its own")
 	wantCommand(t, `generate "gamma p -> p eta" "gamma p -> p pi0" --beam "1 GeV" --bound 0.5`, exitUsage, "--bound is of one reaction")
 }
 
