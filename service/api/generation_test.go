@@ -281,10 +281,11 @@ func TestGenerateEventsDrain(t *testing.T) {
 	err = s.generation.GenerateEvents(&kinegatev1.GenerateEventsRequest{Generation: sample(), EventCount: 100000}, out)
 	f := Explain(err)
 	blocks := out.blocks()
-	if f.Reason != ServerDraining || len(blocks) != 2 {
+	// One block more may have been made meanwhile.
+	if f.Reason != ServerDraining || len(blocks) < 2 || len(blocks) > 3 {
 		t.Fatalf("%v after %d blocks", err, len(blocks))
 	}
-	if got, last := f.Metadata["next_event"], blocks[1]; got != decimal(last.GetFirstEvent()+last.GetEventCount()) {
+	if got, last := f.Metadata["next_event"], blocks[len(blocks)-1]; got != decimal(last.GetFirstEvent()+last.GetEventCount()) {
 		t.Errorf("next event %s after %d + %d", got, last.GetFirstEvent(), last.GetEventCount())
 	}
 }

@@ -32,6 +32,8 @@ type generationStream struct {
 	detector *detector.Detector
 
 	next, end int64
+	// taken is the first event that the caller may not have.
+	taken     int64
 	perBlock  int
 	truthless bool
 	displaced bool
@@ -39,13 +41,20 @@ type generationStream struct {
 	work      *spell
 	seen      int64
 
-	// of the block being made
+	// made is the block being made, sending the one on its way, whose memory is its own
+	// until sent says so; sent is nil when nothing is on its way.
+	made, sending *generatedBlock
+	sent          chan error
+	// largest is the size of the largest event so far.
+	largest int
+}
+
+// generatedBlock is the memory of one block.
+type generatedBlock struct {
 	truth  event.Truth
 	block  event.Block
 	labels detector.Labels
 	writer columnWriter
-	// largest is the size of the largest event so far.
-	largest int
 }
 
 func newGenerationStream(
@@ -56,6 +65,7 @@ func newGenerationStream(
 		service: s, stream: stream, worker: c.generator.NewWorker(), detector: c.detector,
 		next: request.GetFirstEvent(), end: request.GetFirstEvent() + request.GetEventCount(),
 		perBlock: int(request.GetBlockEventCount()), truthless: request.GetWithoutTruth(), displaced: c.displaced,
+		made: &generatedBlock{}, sending: &generatedBlock{}, taken: request.GetFirstEvent(),
 	}
 	if g.perBlock == 0 {
 		g.perBlock = event.MaxEvents
@@ -66,9 +76,17 @@ func newGenerationStream(
 	return g
 }
 
-// run sends the header, the blocks and the summary. Nothing is made ahead of what the
-// caller takes: sending waits for room.
+// run sends the header, the blocks and the summary. One block is made while the one
+// before is on its way, and no more: the next waits until the caller had room for that.
 func (g *generationStream) run(header *kinegatev1.GenerationHeader) error {
+	err := g.frames(header)
+	if settled := g.settle(); err == nil {
+		err = settled
+	}
+	return err
+}
+
+func (g *generationStream) frames(header *kinegatev1.GenerationHeader) error {
 	if err := g.send(&kinegatev1.GenerateEventsResponse{Frame: &kinegatev1.GenerateEventsResponse_Header{Header: header}}); err != nil {
 		return err
 	}
@@ -84,18 +102,31 @@ func (g *generationStream) run(header *kinegatev1.GenerationHeader) error {
 	return g.send(&kinegatev1.GenerateEventsResponse{Frame: &kinegatev1.GenerateEventsResponse_Summary{Summary: g.summary()}})
 }
 
-// send waits until the caller has room for a message. A caller that takes nothing for
-// too long loses the stream, with its connection: see judgeStream.abandon.
+// send sets a message on its way, after the one before.
 func (g *generationStream) send(m *kinegatev1.GenerateEventsResponse) error {
-	g.work.end() // others have the turn meanwhile
+	if err := g.settle(); err != nil {
+		return err
+	}
 	sent := make(chan error, 1)
+	g.sent, g.lastSent = sent, time.Now()
 	go func() { sent <- Contain(func() error { return g.stream.Send(m) }) }()
+	return nil
+}
+
+// settle waits until the caller had room for the message on its way. A caller that takes
+// nothing for too long loses the stream, with its connection: see judgeStream.abandon.
+func (g *generationStream) settle() error {
+	if g.sent == nil {
+		return nil
+	}
+	sent := g.sent
+	g.sent = nil
+	g.work.end() // others have the turn meanwhile
 	limit := g.service.deps.StallLimit
 	stalled := time.NewTimer(limit)
 	defer stalled.Stop()
 	select {
 	case err := <-sent:
-		g.lastSent = time.Now()
 		return err
 	case <-stalled.C:
 	}
@@ -103,14 +134,14 @@ func (g *generationStream) send(m *kinegatev1.GenerateEventsResponse) error {
 		connection.Close()
 		<-sent //nolint:errcheck // only its end matters
 	}
-	next := strconv.FormatInt(g.next, 10)
+	next := strconv.FormatInt(g.taken, 10)
 	return Refuse(StreamStalled, "the caller took no event for "+limit.String()+"; the slice goes on from event "+next, "next_event", next)
 }
 
 // fill makes the events of the next block. Where blocks end depends on the events alone,
 // never on time.
 func (g *generationStream) fill(first int64) error {
-	g.truth.Reset()
+	g.made.truth.Reset()
 	size := 0
 	for full := false; !full && g.next < g.end; {
 		if err := g.leave(); err != nil {
@@ -137,7 +168,7 @@ func (g *generationStream) fill(first int64) error {
 func (g *generationStream) leave() error {
 	select {
 	case <-g.service.deps.Drain.Started:
-		next := strconv.FormatInt(g.next-int64(g.truth.Events()), 10)
+		next := strconv.FormatInt(g.next-int64(g.made.truth.Events()), 10)
 		return Refuse(ServerDraining, "this server is about to leave; ask another one for the events from "+next+" on", "next_event", next)
 	default:
 		return nil
@@ -151,7 +182,7 @@ func (g *generationStream) turn(ctx context.Context, size int) (grown int, full 
 	}
 	defer g.work.end()
 	for range generatedPerTurn {
-		g.worker.Event(g.next, &g.truth)
+		g.worker.Event(g.next, &g.made.truth)
 		if err := ctx.Err(); err != nil {
 			return size, false, err
 		}
@@ -160,7 +191,7 @@ func (g *generationStream) turn(ctx context.Context, size int) (grown int, full 
 		g.largest = max(g.largest, more)
 		size += more
 		// The next event may be the largest yet.
-		full = size+2*g.largest > generationBlockBytes || g.truth.Events() == g.perBlock
+		full = size+2*g.largest > generationBlockBytes || g.made.truth.Events() == g.perBlock
 		if full || g.next == g.end {
 			return size, full, nil
 		}
@@ -179,7 +210,7 @@ func (g *generationStream) lastSize() int {
 		frame                                              = 1024
 		noiseClusters, objectsPerParticle, columnAllowance = 2, 2, 8
 	)
-	t := &g.truth
+	t := &g.made.truth
 	i := t.Events() - 1
 	first, end := t.Particles(i)
 	candidates := int(t.BeamOffsets[i+1] - t.BeamOffsets[i])
@@ -207,25 +238,30 @@ func (g *generationStream) lastSize() int {
 
 // sendBlock measures the events, and sends them.
 func (g *generationStream) sendBlock() error {
-	g.writer.reset()
-	n := int64(g.truth.Events())
+	g.made.writer.reset()
+	n := int64(g.made.truth.Events())
 	m := &kinegatev1.GeneratedBlock{FirstEvent: g.next - n, EventCount: n}
 	if g.detector != nil {
-		g.detector.Measure(&g.truth, &g.block, &g.labels)
-		m.Events = g.writer.block(&g.block)
-		for i := range g.block.Events() {
-			if first, end := g.block.Objects(i); end > first {
+		g.detector.Measure(&g.made.truth, &g.made.block, &g.made.labels)
+		m.Events = g.made.writer.block(&g.made.block)
+		for i := range g.made.block.Events() {
+			if first, end := g.made.block.Objects(i); end > first {
 				g.seen++
 			}
 		}
 	}
 	if !g.truthless {
-		m.Truth = g.writer.truth(&g.truth)
+		m.Truth = g.made.writer.truth(&g.made.truth)
 		if g.detector != nil {
-			m.Truth.ObjectParticles = g.writer.int16s(g.labels.Particle)
+			m.Truth.ObjectParticles = g.made.writer.int16s(g.made.labels.Particle)
 		}
 	}
-	return g.send(&kinegatev1.GenerateEventsResponse{Frame: &kinegatev1.GenerateEventsResponse_Block{Block: m}})
+	if err := g.send(&kinegatev1.GenerateEventsResponse{Frame: &kinegatev1.GenerateEventsResponse_Block{Block: m}}); err != nil {
+		return err
+	}
+	g.made, g.sending = g.sending, g.made
+	g.taken = m.GetFirstEvent()
+	return nil
 }
 
 // summary says what became of the draws.
