@@ -245,7 +245,7 @@ func TestHistoryAcrossCancels(t *testing.T) {
 // client's queue bears, and then one whose process reads nothing at all: the server cuts
 // it off, and it comes back.
 func TestHistoryAcrossStalls(t *testing.T) {
-	const events, perBlock, stall = 40000, 2000, 2500 * time.Millisecond
+	const events, perBlock, stall = 80000, 4000, 2500 * time.Millisecond
 	r := start(t, func(o *Options, _ *Deps) { o.StallLimit = time.Second })
 	cutOff := func() float64 { return r.metric(t, "kinegate_judge_streams_closed_total", string(api.StreamStalled)) }
 	for _, c := range []struct {
@@ -262,6 +262,8 @@ func TestHistoryAcrossStalls(t *testing.T) {
 			before, answered := cutOff(), 0
 			verify(t, checker, history.Run{
 				Client: r.client(t, l.through), Open: history.AllEntries(), Events: events, PerBlock: perBlock,
+				// Few enough that most of the run is still to come when it stops.
+				Options: kinegate.JudgeOptions{Queue: 8},
 				Answered: func(*kinegatev1.VerdictBlock) {
 					if answered++; answered == 3 {
 						c.stop(l)
