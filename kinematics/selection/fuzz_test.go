@@ -57,7 +57,7 @@ func (d *dice) references() []string {
 
 func (d *dice) window() selection.Window {
 	return selection.Window{
-		Observable: selection.Observable(d.below(18)), Products: d.references(), Second: d.references(),
+		Observable: selection.Observable(d.below(22)), Products: d.references(), Second: d.references(),
 		Frame: selection.Frame(d.below(3)), Initial: selection.Initial(d.below(3)), Min: d.limit(), Max: d.limit(),
 	}
 }
@@ -141,7 +141,53 @@ func (d *dice) hypothesis() selection.Hypothesis {
 		w.Min, w.Max = nil, nil
 		h.Record = append(h.Record, w)
 	}
+	h.RecordUncertainties = d.below(2) == 0
+	if d.below(2) == 0 {
+		h.Fit = d.fit()
+	}
 	return h
+}
+
+func (d *dice) fit() *selection.Fit {
+	f := &selection.Fit{
+		Conservation: selection.Conservation(d.below(4)), Vertex: selection.VertexTreatment(d.below(4)),
+	}
+	for range d.below(3) {
+		f.Masses = append(f.Masses, selection.FitMass{Products: d.references(), MassGeV: d.limit()})
+	}
+	if d.below(4) == 0 {
+		f.EqualMasses = append(f.EqualMasses, selection.FitEqualMasses{First: d.references(), Second: d.references()})
+	}
+	if d.below(4) == 0 {
+		f.BeamEnergy = &selection.InitialEnergy{Knowledge: selection.EnergyKnowledge(d.below(4)), SigmaGeV: d.limit()}
+	}
+	if d.below(8) == 0 {
+		f.TargetEnergy = &selection.InitialEnergy{Knowledge: selection.EnergyKnowledge(d.below(4)), SigmaGeV: d.limit()}
+	}
+	return f
+}
+
+// spread is a column of covariances: sound ones most often, and whatever comes else.
+func (d *dice) spread(rows int) *event.Covariance {
+	c := &event.Covariance{Packed: []float64{}}
+	awkward := d.below(3) == 0
+	for range rows {
+		for k := range event.CovarianceSize {
+			x := []float64{1e-4, 0, 0, 1e-4, 0, 1e-4}[k]
+			if awkward && d.below(4) == 0 {
+				x = d.number()
+			}
+			c.Packed = append(c.Packed, x)
+		}
+	}
+	return c
+}
+
+// place appends arbitrary points.
+func (d *dice) place(p *event.Positions, n int) {
+	for range n {
+		p.Append(d.number(), d.number(), d.number())
+	}
 }
 
 func (d *dice) block() *event.Block {
@@ -167,7 +213,32 @@ func (d *dice) block() *event.Block {
 		b.Beam.Offsets = append(b.Beam.Offsets, int32(len(b.Beam.TimeNS)))
 		b.Vertex.Append(0, 0, d.number())
 	}
+	if d.below(4) > 0 {
+		b.Covariance = d.spread(len(b.Class))
+		b.Vertex.Covariance = d.spread(len(b.EventIDs))
+	}
+	if d.below(3) == 0 {
+		b.Clusters = &event.Positions{X: []float64{}, Y: []float64{}, Z: []float64{}}
+		d.place(b.Clusters, len(b.Class))
+	}
+	if d.below(3) == 0 {
+		g := &event.Groups{Offsets: []int32{0}, OfObject: []int32{}}
+		for i := range b.EventIDs {
+			g.Offsets = append(g.Offsets, int32(i+1))
+		}
+		for range b.Class {
+			g.OfObject = append(g.OfObject, int32(d.below(2)))
+		}
+		d.place(&g.Position, len(b.EventIDs))
+		g.Covariance = d.spread(len(b.EventIDs))
+		b.Groups = g
+	}
 	return b
+}
+
+// passes reports whether an assignment of an explanation passes; the first is the best.
+func passes(h *selection.HypothesisExplanation) bool {
+	return len(h.Assignments) > 0 && h.Assignments[0].Passed
 }
 
 // FuzzJudge compiles arbitrary selections and judges arbitrary blocks. What passes the
@@ -204,6 +275,17 @@ func FuzzJudge(f *testing.F) {
 		w.Judge(block, 0, half, &halves)
 		w.Judge(block, half, block.Events(), &halves)
 		sameBits(t, &whole, &halves)
+		for i := range block.Events() {
+			e := w.Explain(block, i, 3)
+			if e.Status != whole.Status[i] || e.Gate != whole.Gate.Get(i) {
+				t.Errorf("event %d: status %v and gate %v, explained as %v and %v", i, whole.Status[i], whole.Gate.Get(i), e.Status, e.Gate)
+			}
+			for h := range e.Hypotheses {
+				if passes(&e.Hypotheses[h]) != whole.Accepted[h].Get(i) {
+					t.Errorf("event %d: hypothesis %d is explained as %+v", i, h, e.Hypotheses[h])
+				}
+			}
+		}
 		for k := range whole.Entries.Len() {
 			e := whole.Entries.Row(k)
 			if int64(e.Tried) > s.AssignmentBudget {
@@ -216,6 +298,61 @@ func FuzzJudge(f *testing.F) {
 				}
 				seen[object] = true
 			}
+		}
+	})
+}
+
+// FuzzFits judges arbitrary blocks with selections that fit: no panic, no accept without
+// a fit that converged, and uncertainties that are at least 0 or NaN.
+func FuzzFits(f *testing.F) {
+	for seed := range 40 {
+		data := make([]byte, 600)
+		state := uint64(seed + 1000)
+		for i := range data {
+			state = state*6364136223846793005 + 1442695040888963407
+			data[i] = byte(state >> 56)
+		}
+		f.Add(data)
+	}
+	vertex, measured, group := taggedFit(1), taggedFit(1), pionsOnly(2)
+	vertex.Fit.Vertex, measured.Fit.Vertex = selection.FreeVertexZ, selection.MeasuredVertex
+	displaced := uncertainHypothesis()
+	displaced.Fit = &selection.Fit{Masses: []selection.FitMass{{Products: []string{"Lambda"}}, {Products: []string{"pi0"}}}}
+	merged := selection.Hypothesis{
+		Reaction: "gamma p -> p pi0", Beam: vertex.Beam, Fit: &selection.Fit{},
+		Measurements: []selection.ProductMeasurement{
+			{Product: "p", Measurement: selection.Direction},
+			{Product: "pi0", Merged: &selection.MergedPhotons{MinEnergyGeV: 0.2}},
+		},
+	}
+	hypotheses := []selection.Hypothesis{vertex, measured, group, displaced, merged}
+	for i := range hypotheses {
+		hypotheses[i].ExtraObjects = anything()
+		hypotheses[i].RecordUncertainties = true
+	}
+	program := compile(f, hypotheses...)
+	f.Fuzz(func(t *testing.T, data []byte) {
+		d := &dice{data: data}
+		block := d.block()
+		if block.Validate() != nil {
+			return
+		}
+		var out event.VerdictBlock
+		w := program.NewWorker(selection.AllEntries)
+		w.Reset(&out)
+		w.Judge(block, 0, block.Events(), &out)
+		for _, e := range rows(&out) {
+			if e.Status == event.Accepted && e.Fit.Status != 1 {
+				t.Errorf("accepted with the fit %+v", e.Fit)
+			}
+			for _, x := range e.Uncertainties {
+				if x < 0 || math.IsInf(x, 0) {
+					t.Errorf("an uncertainty of %g", x)
+				}
+			}
+		}
+		for i := range block.Events() {
+			w.Explain(block, i, 2)
 		}
 	})
 }
