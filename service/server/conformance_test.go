@@ -18,7 +18,7 @@ import (
 const conformanceFolder = "../../testdata/rpc"
 
 // updateCalls writes the replies of this server into the cases.
-var updateCalls = flag.Bool("update-calls", false, "write the replies into testdata/rpc/calls") //nolint:gochecknoglobals // a flag
+var updateCalls = flag.Bool("update-calls", false, "write the replies into testdata/rpc/calls")
 
 // conforming is a server with the selection of the scripts.
 func conforming(t *testing.T) *running {

@@ -137,10 +137,12 @@ func (c *connection) play(s *Step) (done bool, end, breach error) {
 		// A status without a word from the server, as a broken transport makes it.
 		return true, status.Error(codes.Unavailable, "cut"), nil
 	case s.End == "left":
+		timer := time.NewTimer(s.within())
+		defer timer.Stop()
 		select {
 		case <-c.stream.Context().Done():
 			return true, nil, nil
-		case <-time.After(s.within()):
+		case <-timer.C:
 			return false, nil, fmt.Errorf("the client did not leave within %v", s.within())
 		}
 	}

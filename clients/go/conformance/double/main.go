@@ -30,10 +30,10 @@ func main() {
 		os.Exit(usage)
 	}
 	if err := run(os.Args[1], os.Args[2]); err != nil {
-		fmt.Println(err)
+		_, _ = fmt.Fprintln(os.Stdout, err)
 		os.Exit(1)
 	}
-	fmt.Println("held")
+	_, _ = fmt.Fprintln(os.Stdout, "held")
 }
 
 func run(name, address string) error {
@@ -65,7 +65,7 @@ func play(ctx context.Context, s *conformance.Script, address string) error {
 	server := grpc.NewServer()
 	kinegatev1.RegisterSelectionServiceServer(server, double)
 	go func() { _ = server.Serve(listener) }() // Stop ends it
-	fmt.Println("listening")
+	_, _ = fmt.Fprintln(os.Stdout, "listening")
 	<-ctx.Done()
 	server.Stop()
 	return double.Result()
