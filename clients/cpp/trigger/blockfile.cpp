@@ -15,6 +15,7 @@ constexpr std::uint8_t kAllMeasured = 7;
 
 template <typename T>
 void Append(const std::string& column, std::vector<T>* to) {
+  if (column.empty()) return;
   const std::size_t had = to->size();
   to->resize(had + column.size() / sizeof(T));
   std::memcpy(to->data() + had, column.data(), (to->size() - had) * sizeof(T));
