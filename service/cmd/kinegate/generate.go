@@ -7,6 +7,7 @@ import (
 	"strings"
 
 	"github.com/spf13/cobra"
+	"github.com/spf13/pflag"
 
 	kinegate "example.org/kinegate/clients/go"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
@@ -25,22 +26,27 @@ func generateCommand(p program) *cobra.Command {
 			"kinegate judge reads, and .parquet (one row an event). A .kgb file holds event blocks, each\n" +
 			"behind its length, with covariances and vertices, for which .csv has no columns. Without a\n" +
 			"detector a file holds the true particles that would reach one. --request takes the full\n" +
-			"form: shares, bounds, energy and angular shapes, spectra, targets, decays.",
+			"form: shares, bounds, energy and angular shapes, spectra, targets, decays. Beside it only\n" +
+			"--seed and --detector say what is simulated, and take the place of the file's own.",
 		Example: `  kinegate generate "` + omegaExample + `" --beam-range "1.2 GeV:2.4 GeV" --events 10000 --seed 1
   kinegate generate "gamma p -> K+ Lambda, Lambda -> p pi-" --beam "1.5 GeV" --detector hall.yaml --out events.csv
   kinegate generate "omega -> pi+ pi- pi0" --events 1000 --out decays.parquet
-  kinegate generate --request sample.yaml --first-event 100000 --events 50000 --out slice.kgb`,
-		RunE: func(c *cobra.Command, args []string) error { return g.run(c.Context(), args) },
+  kinegate generate --request sample.yaml --seed 2 --first-event 100000 --events 50000 --out slice.kgb`,
+		RunE: func(c *cobra.Command, args []string) error {
+			g.seeded = c.Flags().Changed("seed")
+			return g.run(c.Context(), args)
+		},
 	}
 	g.flags(c)
 	g.sample(c)
+	g.described.BoolVar(&g.weighted, "weighted", false, "events with weights, in place of unweighted ones; of one reaction only")
+	g.described.Float64Var(&g.bound, "bound", 1, "unweighting bound as kinegate bound measures it, above 0; of one reaction only")
 	f := c.Flags()
+	f.AddFlagSet(g.described)
 	f.Int64Var(&g.events, "events", 1000, "number of events, at least 0")
 	f.Int64Var(&g.first, "first-event", 0, "number of the first event")
-	f.Int64Var(&g.seed, "seed", 1, "seed of the events")
-	f.BoolVar(&g.weighted, "weighted", false, "events with weights, in place of unweighted ones; of one reaction only")
-	f.Float64Var(&g.bound, "bound", 0, "unweighting bound as kinegate bound measures it, above 0; of one reaction only")
-	f.StringVar(&g.detectorFile, "detector", "", "detector file (YAML); without one there is only the truth")
+	f.Int64Var(&g.seed, "seed", 1, "seed of the events; beside --request it takes the place of the file's seed")
+	f.StringVar(&g.detectorFile, "detector", "", "detector file (YAML), in place of the detector of --request; without one there is only the truth")
 	f.StringVar(&g.outFile, "out", "", "write the events to this file: .csv, .parquet or .kgb")
 	f.IntVar(&g.show, "show", 2, "number of events to print")
 	f.StringVar(&g.massOf, "mass", "", `products whose true invariant mass is drawn, such as "omega" or "p, pi0[1]"`)
@@ -55,11 +61,14 @@ const omegaExample = "gamma p -> p omega, omega -> pi0 gamma, pi0 -> gamma gamma
 
 // sample adds the flags that say what is simulated.
 func (g *generateRun) sample(c *cobra.Command) {
-	g.initial.add(c)
-	f := c.Flags()
+	inPlace := &cobra.Command{}
+	g.initial.add(inPlace)
+	f := inPlace.Flags()
 	f.StringVar(&g.beamRange, "beam-range", "", `energies of the beam, equally likely, as "LOW:HIGH"`)
 	f.StringVar(&g.electrons, "bremsstrahlung", "", "energy of the electrons whose radiated photons the beam is, with complete screening; needs --beam-range")
-	f.StringVar(&g.requestFile, "request", "", "generation file (YAML), in place of reactions and flags of the beam")
+	g.described = f
+	c.Flags().AddFlagSet(f)
+	c.Flags().StringVar(&g.requestFile, "request", "", "generation file (YAML), in place of reactions and flags of the beam")
 }
 
 // asked checks that there is something to simulate, once.
@@ -67,20 +76,34 @@ func (g *generateRun) asked(reactions []string) error {
 	if (len(reactions) == 0) == (g.requestFile == "") {
 		return badInput("name a reaction, or a file with --request; one or the other")
 	}
-	if g.bound != 0 && g.requestFile != "" {
-		return badInput("--bound is for a reaction named here; a file of --request has its own")
+	if g.requestFile == "" {
+		return nil
 	}
-	return nil
+	var ignored []string
+	g.described.VisitAll(func(f *pflag.Flag) {
+		if f.Changed {
+			ignored = append(ignored, "--"+f.Name)
+		}
+	})
+	switch len(ignored) {
+	case 0:
+		return nil
+	case 1:
+		return badInput("%s is for reactions named here; the file of --request says this itself", ignored[0])
+	}
+	return badInput("%s are for reactions named here; the file of --request says this itself", strings.Join(ignored, ", "))
 }
 
 // generateRun is one run of the command.
 type generateRun struct {
 	*environment
 
+	// described are the flags whose place a file takes.
+	described                          *pflag.FlagSet
 	initial                            initialFlags
 	beamRange, electrons               string
 	events, first, seed                int64
-	weighted                           bool
+	seeded, weighted                   bool
 	bound                              float64
 	detectorFile, requestFile, outFile string
 	show                               int
@@ -142,6 +165,9 @@ func (g *generateRun) generation(ctx context.Context, client *kinegate.Client, r
 		if m, err = g.readGeneration(ctx, client); err != nil {
 			return nil, err
 		}
+		if g.seeded {
+			m.Seed = g.seed
+		}
 	} else {
 		var err error
 		if m.Channels, err = g.channels(reactions); err != nil {
@@ -176,11 +202,13 @@ func (g *generateRun) channels(reactions []string) ([]*kinegatev1.GenerationChan
 	for _, text := range reactions {
 		list = append(list, &kinegatev1.GenerationChannel{Reaction: text})
 	}
-	switch {
-	case g.bound == 0:
+	switch flag := g.described.Lookup("bound"); {
+	case flag == nil || !flag.Changed:
 		return list, nil
 	case len(reactions) > 1:
 		return nil, badInput("--bound is of one reaction; with several write a file for --request")
+	case !(g.bound > 0):
+		return nil, badInput("--bound %v: allowed > 0", g.bound)
 	}
 	list[0].Bound = &g.bound
 	return list, nil

@@ -74,12 +74,35 @@ func TestGenerate(t *testing.T) {
 		{`generate "gamma p -> p eta" --beam "1 GeV" --mass pi0`, exitUsage, "the products are p, eta"},
 		{`generate "gamma p -> p eta" --beam "1 GeV" --events -1`, exitUsage, "event_count"},
 		{`generate`, exitUsage, "--request"},
+		{`generate --request ` + generation + ` --events 0 --seed 9`, exitWell, "seed 9"},
 	} {
 		wantCommand(t, c.arguments, c.code, c.says)
 	}
 	if code, _, errs := command(t, "generate", "--request", faulty); code != exitUsage || !strings.HasPrefix(errs, faulty+":7:") {
 		t.Errorf("code %d, %s", code, errs)
 	}
+}
+
+// TestRequestRefusesWhatItWouldIgnore holds that no flag of the sample stands unheard beside
+// a file that says the same.
+func TestRequestRefusesWhatItWouldIgnore(t *testing.T) {
+	t.Parallel()
+	generation := write(t, "generation.yaml", generationText)
+	flags := []string{
+		`--beam "1 GeV"`, `--beam-kinetic "1 GeV"`, `--beam-momentum "1 GeV"`, `--beam2 "1 GeV"`, `--beam2-kinetic "1 GeV"`,
+		`--beam2-momentum "1 GeV"`, `--angle "1 deg"`, `--sqrt-s "2 GeV"`, `--beam-range "1 GeV:2 GeV"`, `--bremsstrahlung "3 GeV"`,
+	}
+	for _, flag := range flags {
+		name, _, _ := strings.Cut(flag, " ")
+		for _, verb := range []string{"generate", "bound"} {
+			wantCommand(t, verb+` --request `+generation+` `+flag, exitUsage, name+" is for reactions named here")
+		}
+	}
+	for _, flag := range []string{"--weighted", "--weighted=false", "--bound 0.5", "--bound 0"} {
+		name, _, _ := strings.Cut(strings.Replace(flag, "=", " ", 1), " ")
+		wantCommand(t, `generate --request `+generation+` `+flag, exitUsage, name+" is for reactions named here")
+	}
+	wantCommand(t, `generate "gamma p -> p eta" --beam "1 GeV" --bound 0`, exitUsage, "--bound 0")
 }
 
 // TestGenerateCSV holds that the file reads back as the events that the block file holds,
@@ -231,7 +254,7 @@ func TestBound(t *testing.T) {
 	wantCommand(t, `bound "gamma p -> p eta" --beam "1 GeV" --draws 0`, exitUsage, "--draws 0")
 	wantCommand(t, `generate "gamma p -> p pi+ pi- pi0" --beam "2 GeV" --bound 0.12 --events 300`, exitWell, "overflows             0")
 	wantCommand(t, `generate "gamma p -> p pi+ pi- pi0" --beam "2 GeV" --bound 0.05 --events 300`, exitWell, "A bound larger by this factor has none")
-	wantCommand(t, `generate --bound 0.5 --request `+generation, exitUsage, "has its own")
+	wantCommand(t, `generate --bound 0.5 --request `+generation, exitUsage, "--bound is for reactions named here")
 	wantCommand(t, `generate "gamma p -> p eta" "gamma p -> p pi0" --beam "1 GeV" --bound 0.5`, exitUsage, "--bound is of one reaction")
 }
 
