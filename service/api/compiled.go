@@ -142,8 +142,13 @@ func fieldFaults(faults fault.List) []*kinegatev1.FieldFault {
 	for _, f := range faults {
 		bare := *f
 		bare.Field, bare.Line, bare.Column = "", 0, 0
+		reason, ok := reasonOfKind(f.Kind)
+		if !ok {
+			reason = FieldInvalid
+		}
 		messages = append(messages, &kinegatev1.FieldFault{
-			Field: f.Field, Message: sentence(&bare), Line: int32(f.Line), Column: int32(f.Column), //nolint:gosec // texts are below 4 MiB
+			Field: f.Field, Message: sentence(&bare), Reason: string(reason),
+			Line: int32(f.Line), Column: int32(f.Column), //nolint:gosec // texts are below 4 MiB
 		})
 	}
 	return messages

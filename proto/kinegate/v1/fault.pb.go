@@ -33,7 +33,10 @@ type FieldFault struct {
 	// Line in the YAML text, from 1; 0 where there was no text.
 	Line int32 `protobuf:"varint,3,opt,name=line,proto3" json:"line,omitempty"`
 	// Column in the YAML text, from 1; 0 where there was no text.
-	Column        int32 `protobuf:"varint,4,opt,name=column,proto3" json:"column,omitempty"`
+	Column int32 `protobuf:"varint,4,opt,name=column,proto3" json:"column,omitempty"`
+	// Why, as the reason of a call that is refused for this fault: FIELD_INVALID for a value or
+	// for the text itself, CHANNEL_CLOSED for a reaction that the energy does not open.
+	Reason        string `protobuf:"bytes,5,opt,name=reason,proto3" json:"reason,omitempty"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
 }
@@ -96,17 +99,25 @@ func (x *FieldFault) GetColumn() int32 {
 	return 0
 }
 
+func (x *FieldFault) GetReason() string {
+	if x != nil {
+		return x.Reason
+	}
+	return ""
+}
+
 var File_kinegate_v1_fault_proto protoreflect.FileDescriptor
 
 const file_kinegate_v1_fault_proto_rawDesc = "" +
 	"\n" +
-	"\x17kinegate/v1/fault.proto\x12\vkinegate.v1\"h\n" +
+	"\x17kinegate/v1/fault.proto\x12\vkinegate.v1\"\x80\x01\n" +
 	"\n" +
 	"FieldFault\x12\x14\n" +
 	"\x05field\x18\x01 \x01(\tR\x05field\x12\x18\n" +
 	"\amessage\x18\x02 \x01(\tR\amessage\x12\x12\n" +
 	"\x04line\x18\x03 \x01(\x05R\x04line\x12\x16\n" +
-	"\x06column\x18\x04 \x01(\x05R\x06columnB3Z1example.org/kinegate/proto/kinegate/v1;kinegatev1b\x06proto3"
+	"\x06column\x18\x04 \x01(\x05R\x06column\x12\x16\n" +
+	"\x06reason\x18\x05 \x01(\tR\x06reasonB3Z1example.org/kinegate/proto/kinegate/v1;kinegatev1b\x06proto3"
 
 var (
 	file_kinegate_v1_fault_proto_rawDescOnce sync.Once

@@ -11,6 +11,7 @@ import (
 
 	kinegate "example.org/kinegate/clients/go"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+	"example.org/kinegate/service/api"
 	"example.org/kinegate/service/cmd/kinegate/internal/quantity"
 )
 
@@ -231,15 +232,21 @@ func (g *generateRun) readGeneration(ctx context.Context, client *kinegate.Clien
 	return reply.GetGeneration(), g.faults(g.requestFile, reply.GetFaults())
 }
 
-// faults prints the faults of a file and refuses it if there are any.
+// faults prints the faults of a file and refuses it if there are any. A file whose channels
+// are closed and that is sound otherwise gets the answer no.
 func (g *generateRun) faults(name string, faults []*kinegatev1.FieldFault) error {
+	if len(faults) == 0 {
+		return nil
+	}
+	sound := true
 	for _, f := range faults {
 		_, _ = fmt.Fprintln(g.err, faultText(name, f))
+		sound = sound && f.GetReason() == string(api.ChannelClosed)
 	}
-	if len(faults) > 0 {
-		return badInput("%s cannot be used", name)
+	if sound {
+		return errNo
 	}
-	return nil
+	return badInput("%s cannot be used", name)
 }
 
 // initialState reads the flags of the beam.

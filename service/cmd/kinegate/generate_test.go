@@ -53,6 +53,9 @@ func TestGenerate(t *testing.T) {
 	t.Parallel()
 	detector, generation := write(t, "detector.yaml", detectorText), write(t, "generation.yaml", generationText)
 	faulty := write(t, "faulty.yaml", strings.Replace(generationText, "fraction", "fration", 1))
+	below := strings.NewReplacer("1.2", "0.3", "2.4", "0.4").Replace(generationText)
+	closed := write(t, "closed.yaml", below)
+	closedAndFaulty := write(t, "closed-and-faulty.yaml", below+"detector: {name: \"a b\"}\n")
 	for _, c := range []struct {
 		arguments string
 		code      int
@@ -75,8 +78,13 @@ func TestGenerate(t *testing.T) {
 		{`generate "gamma p -> p eta" --beam "1 GeV" --events -1`, exitUsage, "event_count"},
 		{`generate`, exitUsage, "--request"},
 		{`generate --request ` + generation + ` --events 0 --seed 9`, exitWell, "seed 9"},
+		{`generate --request ` + closed, exitNo, "the channel is closed"},
+		{`bound --request ` + closed, exitNo, "the channel is closed"},
 	} {
 		wantCommand(t, c.arguments, c.code, c.says)
+	}
+	if code, _, errs := command(t, "generate", "--request", closedAndFaulty); code != exitUsage {
+		t.Errorf("code %d, %s", code, errs)
 	}
 	if code, _, errs := command(t, "generate", "--request", faulty); code != exitUsage || !strings.HasPrefix(errs, faulty+":7:") {
 		t.Errorf("code %d, %s", code, errs)

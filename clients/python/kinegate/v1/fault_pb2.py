@@ -24,7 +24,7 @@ _sym_db = _symbol_database.Default()
 
 
 
-DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n\x17kinegate/v1/fault.proto\x12\x0bkinegate.v1\"J\n\nFieldFault\x12\r\n\x05\x66ield\x18\x01 \x01(\t\x12\x0f\n\x07message\x18\x02 \x01(\t\x12\x0c\n\x04line\x18\x03 \x01(\x05\x12\x0e\n\x06\x63olumn\x18\x04 \x01(\x05\x42\x33Z1example.org/kinegate/proto/kinegate/v1;kinegatev1b\x06proto3')
+DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n\x17kinegate/v1/fault.proto\x12\x0bkinegate.v1\"Z\n\nFieldFault\x12\r\n\x05\x66ield\x18\x01 \x01(\t\x12\x0f\n\x07message\x18\x02 \x01(\t\x12\x0c\n\x04line\x18\x03 \x01(\x05\x12\x0e\n\x06\x63olumn\x18\x04 \x01(\x05\x12\x0e\n\x06reason\x18\x05 \x01(\tB3Z1example.org/kinegate/proto/kinegate/v1;kinegatev1b\x06proto3')
 
 _globals = globals()
 _builder.BuildMessageAndEnumDescriptors(DESCRIPTOR, _globals)
@@ -33,5 +33,5 @@ if not _descriptor._USE_C_DESCRIPTORS:
   _globals['DESCRIPTOR']._loaded_options = None
   _globals['DESCRIPTOR']._serialized_options = b'Z1example.org/kinegate/proto/kinegate/v1;kinegatev1'
   _globals['_FIELDFAULT']._serialized_start=40
-  _globals['_FIELDFAULT']._serialized_end=114
+  _globals['_FIELDFAULT']._serialized_end=130
 # @@protoc_insertion_point(module_scope)
