@@ -126,9 +126,10 @@ func (d *drafter) fixed(at string, s *InitialState) {
 	if !good {
 		return
 	}
-	if s := momentum.MassSquared(b.fixed.first, b.fixed.second); s > 0 {
-		b.fixed.setBoost(math.Sqrt(s))
+	if square := momentum.MassSquared(b.fixed.first, b.fixed.second); square > 0 {
+		b.fixed.setBoost(math.Sqrt(square))
 	}
+	d.reach(at, s)
 }
 
 // momentum returns the momentum of a beam of mass m.

@@ -113,6 +113,13 @@ func TestFaults(t *testing.T) {
 		{"off shell", root + ".beam.fixed.two_four_momenta.second", "mass shell", fixed(selection.InitialState{
 			FourMomenta: &[2]momentum.Four{{P: momentum.Three{Z: 1}, E: 1}, {E: 0.94}},
 		})},
+		{"below threshold on a target", root + ".beam.fixed.beam_on_target", "0.308", fixed(selection.InitialState{
+			BeamOnTarget: &selection.BeamMotion{KineticEnergyGeV: number(0.3)},
+		})},
+		{"below threshold as a mass", root + ".beam.fixed.sqrt_s_gev", "threshold of the reaction", fixed(selection.InitialState{SqrtSGeV: number(1.2)})},
+		{"below threshold head on", root + ".beam.fixed.two_beams", "threshold of the reaction", fixed(selection.InitialState{
+			TwoBeams: &selection.TwoBeams{Beam1: selection.BeamMotion{MomentumGeV: number(0.1)}, Beam2: selection.BeamMotion{MomentumGeV: number(0.1)}},
+		})},
 		{"sqrt(s)", root + ".beam.fixed.sqrt_s_gev", ">=", fixed(selection.InitialState{SqrtSGeV: number(0.5)})},
 		{"extra objects", root + ".extra_objects", "any", func(s *selection.Selection) { first(s).ExtraObjects = &selection.ExtraObjects{} }},
 		{"soft photons", root + ".extra_objects.soft_photons.max_count", ">= 1", func(s *selection.Selection) {
