@@ -85,6 +85,9 @@ func (d *drafter) fit() {
 	if len(d.faults) > before {
 		return
 	}
+	if d.independent(at, f, plan, &spec); len(d.faults) > before {
+		return
+	}
 	switch {
 	case plan.repointed && plan.vertex == MeasuredVertex:
 		spec.Vertex = constraint.VertexMeasured
@@ -111,7 +114,10 @@ func (d *drafter) compileFit(at string, plan *fitPlan, spec *constraint.Spec) {
 		spec.Masses = append(spec.Masses, constraint.Mass{Objects: index(m.products), As: index(m.as), GeV: m.mass})
 	}
 	if spec.Conserved == 0 && len(spec.Masses) == 0 {
-		d.fault(at, "no constraints", "conservation or at least one mass")
+		e := d.fault(at, "no constraints", "conservation or at least one mass")
+		if d.beamless() {
+			_ = e.Because(beamMissing)
+		}
 		return
 	}
 	problem, err := constraint.Compile(spec)
@@ -153,7 +159,10 @@ func (d *drafter) conservation(at string, f *Fit, plan *fitPlan, spec *constrain
 		return
 	}
 	if !b.known {
-		d.fault(at+".conservation", "given", "none for a hypothesis without a beam")
+		e := d.fault(at+".conservation", "given", "none for a hypothesis without a beam")
+		if d.beamless() {
+			_ = e.Because(beamMissing)
+		}
 		return
 	}
 	if d.reaction.Inclusive {
@@ -167,6 +176,12 @@ func (d *drafter) conservation(at string, f *Fit, plan *fitPlan, spec *constrain
 	d.initialEnergy(at+".beam_energy", f.BeamEnergy, Beam, plan, spec)
 	d.initialEnergy(at+".target_energy", f.TargetEnergy, Target, plan, spec)
 }
+
+// beamMissing is what is wrong where a beamless hypothesis has a fit that needs its beam.
+const beamMissing = "beam is missing, and without it no four-momentum is conserved"
+
+// beamless reports whether the hypothesis could have a beam and has none.
+func (d *drafter) beamless() bool { return d.from.Beam == nil && len(d.reaction.Initial) == 2 }
 
 // initialEnergy makes an initial particle an object of the fit, or a part of what is
 // known exactly.

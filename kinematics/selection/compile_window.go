@@ -54,12 +54,23 @@ func (d *drafter) limits(at string, f form, v *Window, allowed bool, w *window) 
 	if v.Max != nil && d.finite(high, *v.Max) {
 		w.high = *v.Max
 	}
+	if v.Observable == FitProbability {
+		d.probability(low, v.Min)
+		d.probability(high, v.Max)
+	}
 	if v.Min != nil && v.Max != nil && !(w.low < w.high) {
 		d.fault(high, fault.Text(w.high), "> "+lowName+" = "+fault.Text(w.low))
 	}
 	if v.Observable == InvariantMass || v.Observable == MissingMass {
 		w.squared = true
 		w.low, w.high = leastSquare(w.low), leastSquare(w.high)
+	}
+}
+
+// probability checks a limit that is a probability.
+func (d *drafter) probability(field string, limit *float64) {
+	if limit != nil && finite(*limit) && !(*limit >= 0 && *limit <= 1) {
+		d.fault(field, fault.Text(*limit), "0 to 1")
 	}
 }
 

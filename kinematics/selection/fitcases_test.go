@@ -261,7 +261,7 @@ func TestFailedFits(t *testing.T) {
 // size, and the bits of the golden digest.
 func TestGoldenFits(t *testing.T) {
 	h := taggedFit(1)
-	h.Condition = &selection.Condition{Window: within(selection.FitProbability, 0.01, 1.1)}
+	h.Condition = &selection.Condition{Window: within(selection.FitProbability, 0.01, 1)}
 	h.Record = []selection.Window{{Observable: selection.InvariantMass, Products: []string{"pi0"}}}
 	h.RecordUncertainties = true
 	h.ExtraObjects = anything()

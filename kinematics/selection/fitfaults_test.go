@@ -13,7 +13,11 @@ func TestFitFaults(t *testing.T) {
 	energy := func(x float64) *selection.BeamSource {
 		return &selection.BeamSource{Fixed: &selection.InitialState{BeamOnTarget: &selection.BeamMotion{TotalEnergyGeV: &x}}}
 	}
-	minus := -0.1
+	minus, other := -0.1, 0.5
+	four := "-> gamma gamma gamma gamma"
+	equal := func(first, second string) selection.FitEqualMasses {
+		return selection.FitEqualMasses{First: strings.Fields(first), Second: strings.Fields(second)}
+	}
 	two := "gamma p -> p pi0, pi0 -> gamma gamma"
 	for _, c := range []struct {
 		name  string
@@ -39,6 +43,40 @@ func TestFitFaults(t *testing.T) {
 		{"equal masses of one set", selection.Hypothesis{Reaction: two, Beam: tagged, Fit: &selection.Fit{
 			EqualMasses: []selection.FitEqualMasses{{First: []string{"p", "gamma[0]"}, Second: []string{"gamma"}}},
 		}}, "fit.equal_masses[0].second[0]", ""},
+		{"a mass held twice", selection.Hypothesis{Reaction: two, Beam: tagged, Fit: &selection.Fit{
+			Masses: []selection.FitMass{{Products: []string{"pi0"}}, {Products: []string{"pi0"}}},
+		}}, "fit.masses[1]", "bound already, by masses[0]"},
+		{"two masses of one set", selection.Hypothesis{Reaction: two, Beam: tagged, Fit: &selection.Fit{
+			Masses: []selection.FitMass{{Products: []string{"pi0"}}, {Products: []string{"gamma[1]", "gamma[0]"}, MassGeV: &other}},
+		}}, "fit.masses[1]", "bound already, by masses[0]"},
+		{"a pair of equal masses twice", selection.Hypothesis{Reaction: four, Fit: &selection.Fit{EqualMasses: []selection.FitEqualMasses{
+			equal("gamma[0] gamma[1]", "gamma[2] gamma[3]"), equal("gamma[3] gamma[2]", "gamma[0] gamma[1]"),
+		}}}, "fit.equal_masses[1]", "bound already, by equal_masses[0]"},
+		{"a set equal to itself", selection.Hypothesis{Reaction: four, Fit: &selection.Fit{EqualMasses: []selection.FitEqualMasses{
+			equal("gamma[0] gamma[1]", "gamma[1] gamma[0]"),
+		}}}, "fit.equal_masses[0]", "without a common product"},
+		{"equal masses that are held", selection.Hypothesis{Reaction: four, Fit: &selection.Fit{
+			Masses: []selection.FitMass{
+				{Products: []string{"gamma[0]", "gamma[1]"}, MassGeV: &other}, {Products: []string{"gamma[2]", "gamma[3]"}, MassGeV: &other},
+			},
+			EqualMasses: []selection.FitEqualMasses{equal("gamma[0] gamma[1]", "gamma[2] gamma[3]")},
+		}}, "fit.equal_masses[0]", "bound already, by masses[0] and masses[1]"},
+		{"equal masses of two particles", selection.Hypothesis{Reaction: "gamma p -> p pi+ pi-", Beam: tagged, Fit: &selection.Fit{
+			EqualMasses: []selection.FitEqualMasses{equal("pi+", "pi-")},
+		}}, "fit.equal_masses[0]", "own masses"},
+		{"the mass of all", selection.Hypothesis{Reaction: two, Beam: energy(2), Fit: &selection.Fit{
+			Masses: []selection.FitMass{{Products: []string{"p", "pi0"}, MassGeV: &other}},
+		}}, "fit.masses[0]", "the conservation of four-momentum"},
+		{"no beam to conserve with", selection.Hypothesis{Reaction: two, Fit: &selection.Fit{}}, "fit", "beam is missing"},
+		{"no beam for what is asked", selection.Hypothesis{Reaction: two, Fit: &selection.Fit{
+			Conservation: selection.ConserveFourMomentum,
+		}}, "fit.conservation", "beam is missing"},
+		{"a probability above 1", selection.Hypothesis{
+			Reaction: two, Beam: tagged, Fit: &selection.Fit{}, Condition: &selection.Condition{Window: within(selection.FitProbability, 0.1, 5)},
+		}, "condition.window.fit_probability.max", "0 to 1"},
+		{"a probability below 0", selection.Hypothesis{
+			Reaction: two, Beam: tagged, Fit: &selection.Fit{}, Condition: &selection.Condition{Window: within(selection.FitProbability, -0.1, 1)},
+		}, "condition.window.fit_probability.min", "0 to 1"},
 		{"no photon follows the vertex", selection.Hypothesis{
 			Reaction: "gamma p -> p pi+ pi-", Beam: tagged, Fit: &selection.Fit{Vertex: selection.FreeVertexZ},
 		}, "fit.vertex", "no photon is seen"},
