@@ -20,6 +20,9 @@ type Error struct {
 	// Field is the path of the field at fault, such as beam.energy_gev, or the
 	// name of the thing, such as particle or charge.
 	Field string
+	// Law is the law that a Forbidden fault breaks, where Field is a path; where it is empty
+	// Field is the law.
+	Law string
 	// Value is the offending value as text.
 	Value string
 	// Allowed says which values are allowed, as an inequality or a list.
@@ -63,6 +66,16 @@ func (e *Error) At(line, column int) *Error {
 	return e
 }
 
+// Move returns a copy of e at another path. A Forbidden fault keeps its law.
+func (e *Error) Move(field string) *Error {
+	c := *e
+	if e.Kind == Forbidden && e.Law == "" {
+		c.Law = e.Field
+	}
+	c.Field = field
+	return &c
+}
+
 // Because returns e with the problem clause set, in the manner of In.
 func (e *Error) Because(problem string) *Error {
 	e.Problem = problem
@@ -94,8 +107,10 @@ func (e *Error) Error() string {
 // complaint makes.
 func (e *Error) subject() string {
 	switch {
-	case e.Kind == Forbidden:
+	case e.Kind == Forbidden && e.Law == "":
 		return ""
+	case e.Kind == Forbidden:
+		return e.Field
 	case e.Value == "":
 		return e.Field
 	case e.Field == "":
@@ -111,8 +126,12 @@ func (e *Error) complaint() string {
 		text = e.Kind.Error()
 	}
 	if e.Kind == Forbidden {
-		if text += ": " + e.Value; e.Field != "" {
-			text = e.Field + " is " + text
+		law := e.Law
+		if law == "" {
+			law = e.Field
+		}
+		if text += ": " + e.Value; law != "" {
+			text = law + " is " + text
 		}
 	}
 	if e.Allowed != "" {

@@ -26,6 +26,12 @@ func TestErrorText(t *testing.T) {
 			Kind: fault.NotFound, Field: "particle", Value: "Lamda", Line: 3, Column: 2,
 			Problem: "unknown particle", Nearest: []string{"Lambda", "Lambda_b"},
 		}, `line 3 column 2: particle "Lamda": unknown particle, nearest: Lambda, Lambda_b`},
+		{"law", fault.New(fault.Forbidden, "charge", "left +1, right 0", "equal sums").Because("not conserved in a -> b"),
+			"charge is not conserved in a -> b: left +1, right 0, allowed: equal sums"},
+		{"law at a path", fault.New(fault.Forbidden, "charge", "left +1, right 0", "equal sums").Because("not conserved in a -> b").
+			Move("channels[0].reaction").Move("generation.channels[0].reaction"),
+			"generation.channels[0].reaction: charge is not conserved in a -> b: left +1, right 0, allowed: equal sums"},
+		{"value at a path", fault.Number("x", 1, "< 1").Move("a.x"), `a.x "1": invalid, allowed: < 1`},
 		{"cause", &fault.Error{Kind: fault.Invalid, Field: "table", Err: errors.New("short read")},
 			"table: invalid: short read"},
 	}

@@ -47,7 +47,10 @@ func assemble(
 
 // placed sets a fault's position.
 func placed(e *fault.Error, at position) *fault.Error {
-	if at.path != "" {
+	switch {
+	case at.path != "" && e.Kind == fault.Forbidden:
+		e = e.Move(at.path)
+	case at.path != "":
 		e.Field = at.path + ": " + e.Field
 	}
 	return e.At(0, at.column)

@@ -162,7 +162,7 @@ func lawFaults(op, process string, broken []Law, left, right sum, at position) f
 		e := fault.New(fault.Forbidden, law.String(), "left "+l+", right "+r, "equal sums").
 			In(op).Because("not conserved in " + process)
 		if at.path != "" {
-			e.Field = at.path + ": " + e.Field
+			e = e.Move(at.path)
 		}
 		list = append(list, e.At(0, at.column))
 	}

@@ -84,12 +84,7 @@ func (c *compiler) adopt(field string, err error) {
 		list = fault.List{one}
 	}
 	for _, e := range list {
-		adopted := *e
-		if e.Kind == fault.Forbidden {
-			adopted.Problem = e.Field + " " + e.Problem // the field is the law
-		}
-		adopted.Op, adopted.Field = opCompile, field
-		c.faults = append(c.faults, &adopted)
+		c.faults = append(c.faults, e.Move(field).In(opCompile))
 	}
 }
 

@@ -78,9 +78,11 @@ func Because(reason Reason, err error) *Failure {
 func In(prefix string, err error) *Failure {
 	_, explained := errors.AsType[*Failure](err)
 	if e, ok := errors.AsType[*fault.Error](err); ok && !explained && e.Column == 0 {
-		c := *e
-		c.Field = join(prefix, e.Field)
-		return Explain(&c)
+		field := e.Field
+		if e.Kind == fault.Forbidden && e.Law == "" {
+			field = "" // it is the law
+		}
+		return Explain(e.Move(join(prefix, field)))
 	}
 	f := *Explain(err)
 	f.Violations = append([]Violation(nil), f.Violations...)
@@ -117,9 +119,7 @@ func moved(err error, field string) error {
 	if !ok {
 		return atField(field, Explain(err))
 	}
-	c := *e
-	c.Field = field
-	return &c
+	return e.Move(field)
 }
 
 // Error returns the message.

@@ -37,7 +37,14 @@ func TestGenerationFaults(t *testing.T) {
 			g.Channels[0].Decays = []*kinegatev1.DecayOptions{{Product: "rho0", LineShape: &kinegatev1.LineShape{LowGev: 1.5}}}
 		}, codes.FailedPrecondition, "channels[0]", "closed"},
 		"decay of too much mass": {func(g *kinegatev1.Generation) { g.Channels = reactions("gamma p -> p pi0, pi0 -> mu+ mu-") },
-			codes.InvalidArgument, "channels[0].reaction", "at least as heavy"},
+			codes.InvalidArgument, "channels[0].reaction", "energy is not conserved in pi0 -> mu+ mu-"},
+		"structured decay of too much mass": {func(g *kinegatev1.Generation) {
+			g.Channels[0] = &kinegatev1.GenerationChannel{StructuredReaction: &kinegatev1.Reaction{
+				Initial: []string{"gamma", "p"}, Products: []*kinegatev1.Product{
+					{Particle: "p"}, {Particle: "pi0", Daughters: []*kinegatev1.Product{{Particle: "mu+"}, {Particle: "mu-"}}},
+				},
+			}}
+		}, codes.InvalidArgument, "channels[0].structured_reaction.products[1]", "energy is not conserved in pi0 -> mu+ mu-"},
 		"no channel":       {func(g *kinegatev1.Generation) { g.Channels = nil }, codes.InvalidArgument, "channels", "1 to 64"},
 		"text":             {func(g *kinegatev1.Generation) { g.Channels[0].Reaction = "gamma p -> p omga" }, codes.InvalidArgument, "channels[0].reaction", "omega"},
 		"no text":          {func(g *kinegatev1.Generation) { g.Channels[1].Reaction = "" }, codes.InvalidArgument, "channels[1].reaction", "exactly one"},

@@ -97,9 +97,11 @@ func (f *former) name(field, name string) {
 // found keeps the faults of the core under a path.
 func (f *former) found(err error, path func(field string) string) {
 	for _, e := range faultsOf(err) {
-		c := *e
-		c.Field = path(e.Field)
-		f.faults = append(f.faults, &c)
+		field := e.Field
+		if e.Kind == fault.Forbidden && e.Law == "" {
+			field = "" // it is the law
+		}
+		f.faults = append(f.faults, e.Move(path(field)))
 	}
 }
 

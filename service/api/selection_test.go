@@ -312,3 +312,21 @@ func FuzzEventBlock(f *testing.F) {
 		}
 	})
 }
+
+// TestBrokenLawOfSelection wants the name of the law in the fault and in the refusal.
+func TestBrokenLawOfSelection(t *testing.T) {
+	t.Parallel()
+	const says = "energy is not conserved in pi0 -> mu+ mu-"
+	reply := checkText(t, "name: law\nhypotheses:\n  - name: a\n    reaction: \"gamma p -> p pi0, pi0 -> mu+ mu-\"\n")
+	if f := reply.GetFaults(); len(f) != 1 || !strings.Contains(f[0].GetMessage(), says) || f[0].GetField() != "hypotheses[0].reaction" ||
+		f[0].GetReason() != string(LawBroken) {
+		t.Errorf("faults %v", f)
+	}
+	block, _ := dimuon()
+	_, err := newServices(t).bulk.JudgeBlock(t.Context(), &kinegatev1.JudgeBlockRequest{
+		Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: reply.GetSelection()}}, Block: block,
+	})
+	if err == nil || !strings.Contains(err.Error(), "hypotheses[0].reaction: "+says) {
+		t.Errorf("the refusal is %v", err)
+	}
+}
