@@ -50,7 +50,7 @@ func generateCommand(p program) *cobra.Command {
 	f.StringVar(&g.detectorFile, "detector", "", "detector file (YAML), in place of the detector of --request; without one there is only the truth")
 	f.StringVar(&g.outFile, "out", "", "write the events to this file: .csv, .parquet or .kgb")
 	f.IntVar(&g.show, "show", 2, "number of events to print")
-	f.StringVar(&g.massOf, "mass", "", `products whose true invariant mass is drawn, such as "omega" or "p, pi0[1]"`)
+	f.StringVar(&g.observable, "observable", "", `what is drawn of the true events: the mass, or the energy or polar angle in the laboratory, of a product or of the sum of several, such as "mass omega", "energy K+", "angle p, pi0[1]"; with --plot alone the mass of the first product without a sharp one, or else the energy of the first product`)
 	g.picture.flag(c)
 	return c
 }
@@ -108,7 +108,7 @@ type generateRun struct {
 	bound                              float64
 	detectorFile, requestFile, outFile string
 	show                               int
-	massOf                             string
+	observable                         string
 	picture                            drawing
 }
 
@@ -119,6 +119,15 @@ func (g *generateRun) run(ctx context.Context, reactions []string) error {
 	}
 	if err := g.asked(reactions); err != nil {
 		return err
+	}
+	var drawn *observableSample
+	if draw || g.observable != "" {
+		if g.events == 0 {
+			return badInput("--events 0 leaves nothing to draw")
+		}
+		if drawn, err = newObservableSample(g.observable); err != nil {
+			return err
+		}
 	}
 	client, closeClient, err := g.connect(ctx)
 	if err != nil {
@@ -139,23 +148,20 @@ func (g *generateRun) run(ctx context.Context, reactions []string) error {
 	request := &kinegatev1.GenerateEventsRequest{
 		Generation: generation, FirstEvent: g.first, EventCount: g.events, BlockEventCount: eventsPerBlock,
 	}
-	s := &generated{environment: g.environment, sink: sink, show: g.show}
-	if draw || g.massOf != "" {
-		s.masses = &massSample{wanted: g.massOf}
-	}
+	s := &generated{environment: g.environment, sink: sink, show: g.show, drawn: drawn}
 	if err := s.receive(ctx, client, request); err != nil {
 		if len(reactions) == 1 {
 			err = underline(err, reactions[0])
 		}
 		return err
 	}
-	if err := s.report(g.outFile); err != nil || s.masses == nil {
+	if err := s.report(g.outFile); err != nil || drawn == nil {
 		return err
 	}
 	if draw {
-		return g.picture.save(g.environment, s.masses.picture(s.header))
+		return g.picture.save(g.environment, drawn.picture())
 	}
-	return s.masses.write(g.environment)
+	return drawn.write(g.environment)
 }
 
 // generation reads the files and flags.

@@ -62,7 +62,14 @@ func TestGenerate(t *testing.T) {
 		says      string
 	}{
 		{`generate "` + omegaExample + `" --beam-range "1.2 GeV:2.4 GeV" --events 500`, exitWell, "effective events      500"},
-		{`generate "` + omegaExample + `" --beam "1.5 GeV" --events 500 --show 0 --mass omega`, exitWell, "true mass of omega"},
+		{`generate "` + omegaExample + `" --beam "1.5 GeV" --events 500 --show 0 --observable "mass omega"`, exitWell, "true mass of omega"},
+		{`generate "gamma p -> K+ Lambda" --beam "1.5 GeV" --events 50 --show 0 --observable "energy K+"`, exitWell, "true laboratory energy of K+"},
+		{`generate "gamma p -> p pi0 pi0" --beam "1.5 GeV" --events 50 --show 0 --observable "angle p, pi0[1]"`, exitWell, "true laboratory angle of p pi0[1]"},
+		{`generate "gamma p -> p eta" --beam "1 GeV" --observable "mas eta"`, exitUsage, "write mass, energy or angle"},
+		{`generate "gamma p -> p eta" --beam "1 GeV" --observable mass`, exitUsage, "write mass, energy or angle"},
+		{`generate "gamma p -> p eta" --beam "1 GeV" --events 0 --observable "mass eta"`, exitUsage, "nothing to draw"},
+		{`generate "gamma p -> p eta" --beam "1 GeV" --events 0 --plot /nowhere/a.svg`, exitUsage, "nothing to draw"},
+
 		{`generate "omega -> pi+ pi- pi0" --events 5 --weighted`, exitWell, "of the sample"},
 		{`generate "gamma gamma -> e+ e-" --beam "1 GeV" --beam2 "1 MeV" --angle "90 deg" --events 5`, exitWell, "e-"},
 		{`generate --request ` + generation + ` --detector ` + detector + ` --events 100`, exitWell, "with an object seen"},
@@ -74,7 +81,7 @@ func TestGenerate(t *testing.T) {
 		{`generate "gamma p -> p eta" --beam-range "1 GeV"`, exitUsage, "LOW:HIGH"},
 		{`generate "gamma p -> p eta" --beam "1 GeV" --beam-range "1 GeV:2 GeV"`, exitUsage, "one or the other"},
 		{`generate "gamma p -> p eta" --beam "1 GeV" --out events.txt`, exitUsage, ".parquet"},
-		{`generate "gamma p -> p eta" --beam "1 GeV" --mass pi0`, exitUsage, "the products are p, eta"},
+		{`generate "gamma p -> p eta" --beam "1 GeV" --observable "mass pi0"`, exitUsage, "the products are p, eta"},
 		{`generate "gamma p -> p eta" --beam "1 GeV" --events -1`, exitUsage, "event_count"},
 		{`generate`, exitUsage, "--request"},
 		{`generate --request ` + generation + ` --events 0 --seed 9`, exitWell, "seed 9"},
@@ -88,6 +95,30 @@ func TestGenerate(t *testing.T) {
 	}
 	if code, _, errs := command(t, "generate", "--request", faulty); code != exitUsage || !strings.HasPrefix(errs, faulty+":7:") {
 		t.Errorf("code %d, %s", code, errs)
+	}
+}
+
+// TestPlotChoosesAnObservable holds that without a word from the user no sharp mass is drawn.
+func TestPlotChoosesAnObservable(t *testing.T) {
+	t.Parallel()
+	for line, label := range map[string]string{
+		`"` + omegaExample + `" --beam "1.5 GeV"`:                   "true mass of omega",
+		`"gamma p -> p pi0, pi0 -> gamma gamma" --beam "1 GeV"`:     "true laboratory energy of p",
+		`"gamma p -> K+ Lambda" --beam "1.5 GeV"`:                   "true laboratory energy of K+",
+		`"eta -> gamma gamma"`:                                      "events, all at 273.",
+		`"gamma p -> p eta" --beam "1 GeV" --observable "mass eta"`: "events, all at 547.",
+	} {
+		file := filepath.Join(t.TempDir(), "a.svg")
+		if code, _, errs := command(t, shellWords("generate "+line+" --events 300 --show 0 --plot "+file)...); code != exitWell {
+			t.Fatalf("%s: %s", line, errs)
+		}
+		picture, err := os.ReadFile(file)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if !strings.Contains(string(picture), label) {
+			t.Errorf("%s: the picture does not say %q", line, label)
+		}
 	}
 }
 

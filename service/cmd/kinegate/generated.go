@@ -19,9 +19,9 @@ import (
 type generated struct {
 	*environment
 
-	sink   eventSink // nil for none
-	show   int
-	masses *massSample // nil for none
+	sink  eventSink // nil for none
+	show  int
+	drawn *observableSample // nil for none
 
 	header  *kinegatev1.GenerationHeader
 	summary *kinegatev1.GenerationSummary
@@ -81,8 +81,8 @@ func (g *generated) receive(ctx context.Context, client *kinegate.Client, reques
 		switch frame := m.GetFrame().(type) {
 		case *kinegatev1.GenerateEventsResponse_Header:
 			g.header = frame.Header
-			if g.masses != nil {
-				err = g.masses.choose(frame.Header)
+			if g.drawn != nil {
+				err = g.drawn.choose(frame.Header.GetChannels())
 			}
 		case *kinegatev1.GenerateEventsResponse_Block:
 			made += frame.Block.GetEventCount()
@@ -117,8 +117,10 @@ func (g *generated) take(block *kinegatev1.GeneratedBlock) error {
 	if room := g.show - len(g.shown); room > 0 {
 		g.shown = append(g.shown, events[:min(room, len(events))]...)
 	}
-	if g.masses != nil {
-		g.masses.add(events)
+	if g.drawn != nil {
+		if err := g.drawn.add(events); err != nil {
+			return err
+		}
 	}
 	if g.sink != nil {
 		return g.sink.add(g.header, block, events)
