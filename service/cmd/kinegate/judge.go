@@ -2,14 +2,19 @@ package main
 
 import (
 	"context"
+	"errors"
 	"fmt"
 	"os"
+	"strings"
 	"time"
 
 	"github.com/spf13/cobra"
+	"google.golang.org/genproto/googleapis/rpc/errdetails"
+	"google.golang.org/grpc/status"
 
 	kinegate "example.org/kinegate/clients/go"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+	"example.org/kinegate/service/api"
 	"example.org/kinegate/service/cmd/kinegate/internal/eventfile"
 	"example.org/kinegate/service/cmd/kinegate/internal/text"
 )
@@ -96,7 +101,7 @@ func (j *judgeRun) run(ctx context.Context, files []string) error {
 		return err
 	}
 	if j.explaining {
-		return j.explainEvent(ctx, client, files, next)
+		return j.refused(j.explainEvent(ctx, client, files, next))
 	}
 	sinks, err := j.sinks()
 	if err != nil {
@@ -127,7 +132,7 @@ func (j *judgeRun) run(ctx context.Context, files []string) error {
 	})
 	progress.Done()
 	if err != nil {
-		return err
+		return j.refused(err)
 	}
 	return j.report(sums, sinks, time.Since(start))
 }
@@ -148,6 +153,30 @@ func (j *judgeRun) blocks(source *eventSource) (next func() (*batch[eventfile.Ev
 		}
 		return b, assumed.fill(b.block)
 	}, nil
+}
+
+// refused says of events without the covariances that a fit needs how to state them. That,
+// like everything else for which a block is refused, is a fault of what was given.
+func (j *judgeRun) refused(err error) error {
+	var rejected *rejectedBlock
+	message, field := "", ""
+	if errors.As(err, &rejected) {
+		message, field = rejected.Error(), rejected.GetField()
+	} else if s, ok := status.FromError(err); ok && reasonOf(s) == string(api.BlockInvalid) {
+		message = describeStatus(s)
+		for _, d := range s.Details() {
+			if bad, ok := d.(*errdetails.BadRequest); ok && len(bad.GetFieldViolations()) > 0 {
+				field = bad.GetFieldViolations()[0].GetField()
+			}
+		}
+	}
+	switch {
+	case message == "":
+		return err
+	case strings.TrimPrefix(field, "block.") == "covariance" && j.assume == "":
+		return badInput("%s\n  the events have no covariances, for which .csv has no columns: state them with --assume-resolution, such as \"1.5 %%:1 mrad\"", message)
+	}
+	return badInput("%s", message)
 }
 
 // check reads the selection on the server, which also gives it in its own form.

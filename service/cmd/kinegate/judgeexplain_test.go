@@ -2,7 +2,11 @@ package main
 
 import (
 	"math"
+	"os"
+	"path/filepath"
+	"strings"
 	"testing"
+	"unicode"
 
 	"google.golang.org/protobuf/encoding/protojson"
 
@@ -32,8 +36,8 @@ func TestJudgeExplain(t *testing.T) {
 		{judgePions + " --explain 999", exitUsage, "no event 999"},
 		{judgePions + " --explain 4 --assignments 0", exitUsage, "1 to 1000"},
 		{"judge --selection " + leptonsFit + " " + leptonsEvents + ` --assume-resolution "1.5 %:1 mrad" --explain 34442568`, exitWell, "mass of mu+[0] mu-[0]"},
-		{"judge --selection " + leptonsFit + " " + leptonsEvents + " --explain 34442568", exitUsage, "covariance"},
-		{"judge --selection " + leptonsFit + " " + leptonsEvents, exitFailed, "covariance"},
+		{"judge --selection " + leptonsFit + " " + leptonsEvents + " --explain 34442568", exitUsage, "state them with --assume-resolution"},
+		{"judge --selection " + leptonsFit + " " + leptonsEvents, exitUsage, "state them with --assume-resolution"},
 		{"judge --selection " + leptonsFit + " " + leptonsEvents + " --assume-resolution 0.015", exitUsage, "PART:ANGLE"},
 		{"judge --selection " + leptonsFit + " " + leptonsEvents + ` --assume-resolution "2:1 mrad"`, exitUsage, "below 1"},
 		{"judge --selection " + leptonsFit + " " + leptonsEvents + ` --assume-resolution "0.01:1 GeV"`, exitUsage, "--assume-resolution"},
@@ -44,6 +48,25 @@ func TestJudgeExplain(t *testing.T) {
 	var reply kinegatev1.ExplainVerdictResponse
 	if err := protojson.Unmarshal([]byte(out), &reply); err != nil || code != exitWell || reply.GetEventId() != 4 {
 		t.Errorf("code %d, %v, %s", code, err, errs)
+	}
+}
+
+// TestJudgeOfNoText gives a file that is no text another ending than its own.
+func TestJudgeOfNoText(t *testing.T) {
+	t.Parallel()
+	raw, err := os.ReadFile(pionsEvents)
+	if err != nil {
+		t.Fatal(err)
+	}
+	name := filepath.Join(t.TempDir(), "events.parquet")
+	for _, start := range []string{"", "PAR1\"\x15\x00", "PAR1\x15\x04\x15\x90\n"} {
+		if err := os.WriteFile(name, append([]byte(start), raw...), 0o600); err != nil {
+			t.Fatal(err)
+		}
+		code, _, errs := command(t, "judge", "--selection", pionsSelection, name)
+		if code != exitUsage || !strings.Contains(errs, "end in .csv, or in .kgb") || strings.ContainsFunc(strings.TrimSpace(errs), unicode.IsControl) {
+			t.Errorf("code %d, says %q", code, errs)
+		}
 	}
 }
 

@@ -3,6 +3,7 @@ package main
 import (
 	"context"
 	"errors"
+	"fmt"
 	"io"
 	"time"
 
@@ -16,6 +17,17 @@ type batch[T any] struct {
 	// events are the sender's own notes, one per event.
 	events []T
 	sent   time.Time
+}
+
+// rejectedBlock is a block that the server refused to judge for what is in it.
+type rejectedBlock struct {
+	*kinegatev1.Rejection
+
+	sequence int64
+}
+
+func (r *rejectedBlock) Error() string {
+	return fmt.Sprintf("block %d was rejected: %s: %s", r.sequence, r.GetReason(), r.GetMessage())
 }
 
 // pump sends batches through a judge stream until next returns io.EOF, and hands
@@ -42,6 +54,9 @@ func pump[T any](
 		block, err := stream.Recv()
 		if err != nil {
 			return errors.Join(senderError(cancel, sent), err)
+		}
+		if r := block.GetRejected(); r != nil {
+			return &rejectedBlock{Rejection: r, sequence: block.GetSequence()}
 		}
 		verdicts, err := kinegate.ReadVerdicts(block)
 		if err != nil {

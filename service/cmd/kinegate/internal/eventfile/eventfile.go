@@ -22,6 +22,8 @@
 package eventfile
 
 import (
+	"bufio"
+	"bytes"
 	"encoding/csv"
 	"errors"
 	"fmt"
@@ -29,6 +31,7 @@ import (
 	"slices"
 	"strconv"
 	"strings"
+	"unicode"
 
 	kinegate "example.org/kinegate/clients/go"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
@@ -56,7 +59,11 @@ type Reader struct {
 
 // NewReader reads the line of names.
 func NewReader(r io.Reader) (*Reader, error) {
-	c := csv.NewReader(r)
+	start := bufio.NewReader(r)
+	if head, _ := start.Peek(headBytes); bytes.ContainsFunc(head, binary) { // what fails to read, fails again below
+		return nil, errors.New("is no text; files of events are read that end in .csv, or in " + Extension + " for blocks")
+	}
+	c := csv.NewReader(start)
 	c.ReuseRecord = true
 	c.TrimLeadingSpace = true
 	c.Comment = '#'
@@ -73,6 +80,12 @@ func NewReader(r io.Reader) (*Reader, error) {
 	}
 	return &Reader{Coordinates: l.coordinates, csv: c, layout: l}, nil
 }
+
+// headBytes is how much of a file shows whether it is text.
+const headBytes = 512
+
+// binary reports whether a rune does not occur in text.
+func binary(r rune) bool { return unicode.IsControl(r) && !strings.ContainsRune("\t\r\n", r) }
 
 // Next returns the next event, io.EOF after the last.
 func (r *Reader) Next() (Event, error) {
