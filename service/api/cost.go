@@ -20,9 +20,17 @@ const rowsPerShare = 64
 func Cost(request any) int {
 	switch m := request.(type) {
 	case *kinegatev1.JudgeBlockRequest:
-		return min(1+len(m.GetBlock().GetObjectClasses())/rowsPerShare, SlotShares)
+		return costOfBlock(m.GetBlock())
+	case *kinegatev1.ExplainVerdictRequest:
+		return costOfBlock(m.GetBlock())
 	case *kinegatev1.ListOpenChannelsRequest, *kinegatev1.TraceDalitzBoundaryRequest, *kinegatev1.MeasureBoundRequest:
 		return SlotShares
 	}
 	return 1
+}
+
+// costOfBlock is the cost of reading a block, which explaining one of its events takes as
+// judging all does.
+func costOfBlock(b *kinegatev1.EventBlock) int {
+	return min(1+len(b.GetObjectClasses())/rowsPerShare, SlotShares)
 }

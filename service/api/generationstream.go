@@ -241,6 +241,9 @@ func (g *generationStream) sendBlock() error {
 	g.made.writer.reset()
 	n := int64(g.made.truth.Events())
 	m := &kinegatev1.GeneratedBlock{FirstEvent: g.next - n, EventCount: n}
+	if err := g.work.take(); err != nil {
+		return err
+	}
 	if g.detector != nil {
 		g.detector.Measure(&g.made.truth, &g.made.block, &g.made.labels)
 		m.Events = g.made.writer.block(&g.made.block)
@@ -256,6 +259,7 @@ func (g *generationStream) sendBlock() error {
 			m.Truth.ObjectParticles = g.made.writer.int16s(g.made.labels.Particle)
 		}
 	}
+	g.work.end()
 	if err := g.send(&kinegatev1.GenerateEventsResponse{Frame: &kinegatev1.GenerateEventsResponse_Block{Block: m}}); err != nil {
 		return err
 	}

@@ -112,6 +112,15 @@ func TestCallersThatSendNothing(t *testing.T) {
 			t.Fatal(err)
 		}
 		wantReason(t, stream.RecvMsg(&kinegatev1.GetInfoResponse{}), reason)
+		// A header of a message is none yet.
+		raw, err := r.network.dial(t.Context(), r.options.GeneralAddress)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if status := rawFrames(t, raw, method, []byte{0, 0, 0, 0, 9}, false); len(status) > 2 {
+			t.Errorf("%s: a header alone was ended by %s", method, status)
+		}
+		_ = raw.Close()
 		eventually(t, "the reason in the log", func() bool { return strings.Contains(r.log.String(), `"reason":"`+string(reason)+`"`) })
 	}
 }

@@ -89,9 +89,6 @@ func (c *call) receive(in *incoming) error {
 	if err := c.transport.ReadMessageHeader(header[:]); err != nil {
 		return receiveFailure(err)
 	}
-	if c.waiting != nil {
-		c.waiting.Stop()
-	}
 	length := int64(binary.BigEndian.Uint32(header[1:]))
 	switch {
 	case header[0] == compressed:
@@ -102,10 +99,16 @@ func (c *call) receive(in *incoming) error {
 		return tooLarge(length, int64(c.limits.MessageBytes))
 	}
 	data, err := c.transport.Read(int(length))
+	if errors.Is(err, io.EOF) && length > 0 {
+		err = io.ErrUnexpectedEOF // the caller ended its side inside a message
+	}
 	if err != nil {
 		return receiveFailure(err)
 	}
 	defer data.Free()
+	if c.waiting != nil {
+		c.waiting.Stop()
+	}
 	in.read(data)
 	if in.fault != nil {
 		return in.fault

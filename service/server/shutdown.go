@@ -7,8 +7,9 @@ import (
 	"time"
 )
 
-// ErrCut says that calls were cut because the time to drain was over.
-var ErrCut = errors.New("calls were cut: the time to drain was over")
+// ErrCut says that what was still open was cut: the time to drain was over, or there was a
+// second signal.
+var ErrCut = errors.New("what was still open was cut: the time to drain was over or there was a second signal")
 
 // Shutdown stops the server in the steps that lose no call of a client that watches
 // health: NOT_SERVING, then service as before for the notice, then the end of watches

@@ -19,9 +19,11 @@ type strikes struct {
 	mu    sync.Mutex
 	count float64
 	last  time.Time
+	told  bool // that they were too many
 }
 
-// note notes the end of a call, given up or not, and reports whether it was one too many.
+// note notes the end of a call, given up or not, and reports once that it was one too
+// many.
 func (s *strikes) note(givenUp bool, now time.Time) (tooMany bool) {
 	s.mu.Lock()
 	defer s.mu.Unlock()
@@ -34,5 +36,7 @@ func (s *strikes) note(givenUp bool, now time.Time) (tooMany bool) {
 	} else {
 		s.count = max(0, s.count-1)
 	}
-	return s.count > mostStrikes
+	first := s.count > mostStrikes && !s.told
+	s.told = s.told || first
+	return first
 }

@@ -82,12 +82,17 @@ func TestRefusedBeforeWork(t *testing.T) {
 // TestFramesOfMessages sends message headers that gRPC's own client would not.
 func TestFramesOfMessages(t *testing.T) {
 	r := start(t)
-	for name, data := range map[string][]byte{
-		"compressed without saying how": {1, 0, 0, 0, 0},
-		"unknown flag":                  {2, 0, 0, 0, 0},
-		"largest length there is":       {0, 0xff, 0xff, 0xff, 0xff},
-		"half a header":                 {0, 0, 0},
-		"half a message":                {0, 0, 0, 0, 9, 1, 2},
+	const malformed, tooLarge, unsupported = "3", "8", "12" // INVALID_ARGUMENT, RESOURCE_EXHAUSTED, UNIMPLEMENTED
+	for name, c := range map[string]struct {
+		data []byte
+		code string
+	}{
+		"compressed without saying how": {[]byte{1, 0, 0, 0, 0}, unsupported},
+		"unknown flag":                  {[]byte{2, 0, 0, 0, 0}, malformed},
+		"largest length there is":       {[]byte{0, 0xff, 0xff, 0xff, 0xff}, tooLarge},
+		"half a header":                 {[]byte{0, 0, 0}, malformed},
+		"a header alone":                {[]byte{0, 0, 0, 0, 9}, malformed},
+		"half a message":                {[]byte{0, 0, 0, 0, 9, 1, 2}, malformed},
 	} {
 		t.Run(name, func(t *testing.T) {
 			conn, err := r.network.dial(t.Context(), r.options.GeneralAddress)
@@ -95,8 +100,19 @@ func TestFramesOfMessages(t *testing.T) {
 				t.Fatal(err)
 			}
 			defer func() { _ = conn.Close() }()
-			if code := rawCall(t, conn, kinegatev1.InfoService_GetInfo_FullMethodName, data); code != "3" && code != "8" && code != "12" {
-				t.Errorf("grpc-status %q", code)
+			if code := rawCall(t, conn, kinegatev1.InfoService_GetInfo_FullMethodName, c.data); code != c.code {
+				t.Errorf("grpc-status %q, want %s", code, c.code)
+			}
+			if c.code != malformed {
+				return
+			}
+			again, err := r.network.dial(t.Context(), r.options.GeneralAddress)
+			if err != nil {
+				t.Fatal(err)
+			}
+			defer func() { _ = again.Close() }()
+			if code := rawCall(t, again, kinegatev1.SelectionService_Judge_FullMethodName, c.data); code != c.code {
+				t.Errorf("as a stream: grpc-status %q, want %s", code, c.code)
 			}
 		})
 	}
@@ -128,6 +144,12 @@ func TestRawPaths(t *testing.T) {
 // rawCall sends data as a call of a path and returns its grpc-status, or what ended it.
 func rawCall(t *testing.T, conn net.Conn, path string, data []byte) string {
 	t.Helper()
+	return rawFrames(t, conn, path, data, true)
+}
+
+// rawFrames is rawCall for a caller who may have more to send.
+func rawFrames(t *testing.T, conn net.Conn, path string, data []byte, last bool) string {
+	t.Helper()
 	_ = conn.SetDeadline(time.Now().Add(5 * time.Second))
 	if _, err := conn.Write([]byte(http2.ClientPreface)); err != nil {
 		t.Fatal(err)
@@ -144,7 +166,7 @@ func rawCall(t *testing.T, conn net.Conn, path string, data []byte) string {
 		_ = encoder.WriteField(hpack.HeaderField{Name: field[0], Value: field[1]})
 	}
 	_ = framer.WriteHeaders(http2.HeadersFrameParam{StreamID: 1, BlockFragment: []byte(block.String()), EndHeaders: true})
-	_ = framer.WriteData(1, true, data)
+	_ = framer.WriteData(1, last, data)
 	for {
 		frame, err := framer.ReadFrame()
 		if err != nil {

@@ -75,7 +75,7 @@ func (q *workQueue) placeLocked(cost, slots int) (now bool, err error) {
 	if len(q.waiting) == 0 && q.used+cost <= room {
 		return true, nil
 	}
-	most := room / 2
+	most := max(room/2, api.SlotShares) // work of a whole slot can wait where there is only one
 	if q.queued+cost > most {
 		q.dropExpiredLocked()
 	}

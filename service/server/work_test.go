@@ -79,6 +79,26 @@ func TestWorkQueue(t *testing.T) {
 	}
 }
 
+// TestWholeSlotWaits: work of a whole slot waits for the only one while cheap work holds
+// it, and no more than one does.
+func TestWholeSlotWaits(t *testing.T) {
+	q, _ := newWork(t, 1)
+	if err := q.enter(t.Context(), 1, 1); err != nil {
+		t.Fatal(err)
+	}
+	entered := make(chan error, 1)
+	go func() { entered <- q.enter(t.Context(), api.SlotShares, 1) }()
+	eventually(t, "a waiter", func() bool { return q.length() == 1 })
+	if err := q.enter(t.Context(), api.SlotShares, 1); err == nil || api.Explain(err).Reason != api.ServerOverloaded {
+		t.Errorf("a second one: %v", err)
+	}
+	q.leave(1)
+	if err := <-entered; err != nil {
+		t.Errorf("the one that waited: %v", err)
+	}
+	q.leave(api.SlotShares)
+}
+
 // TestFullQueueRefusesAtTheDoor: when not even the cheapest work could wait, calls and
 // streams that only send are refused before a message of theirs is read; health and
 // streams with credit are not.
@@ -105,7 +125,7 @@ func TestFullQueueRefusesAtTheDoor(t *testing.T) {
 	}
 	ctx, cancel := context.WithCancel(t.Context())
 	waiting := make(chan error, 1)
-	go func() { waiting <- q.enter(ctx, api.SlotShares/2, 1) }()
+	go func() { waiting <- q.enter(ctx, api.SlotShares, 1) }()
 	eventually(t, "a full queue", func() bool { return q.length() == 1 })
 	wantReason(t, generate(), api.ServerOverloaded)
 	wantReason(t, unread(), api.ServerOverloaded)
