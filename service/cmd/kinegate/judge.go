@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"os"
+	"slices"
 	"strings"
 	"time"
 
@@ -108,6 +109,7 @@ func (j *judgeRun) run(ctx context.Context, files []string) error {
 		return err
 	}
 	sums := newTally(j.checked.GetHypotheses())
+	why := &reasons{}
 	progress := text.NewProgress(j.err, j.terminal, "judging", source.size())
 	open := &kinegatev1.JudgeOpen{
 		Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: j.checked.GetSelection()}},
@@ -119,6 +121,7 @@ func (j *judgeRun) run(ctx context.Context, files []string) error {
 	start := time.Now()
 	err = pump(ctx, gate, open, next, func(b *batch[eventfile.Event], v *kinegate.Verdicts) error {
 		sums.add(v)
+		why.keep(b.block, len(b.events))
 		progress.Set(source.read.Load())
 		if err := j.tell(v.Block, nil); err != nil || j.json && j.outFile == "" {
 			return err
@@ -134,7 +137,13 @@ func (j *judgeRun) run(ctx context.Context, files []string) error {
 	if err != nil {
 		return j.refused(err)
 	}
-	return j.report(sums, sinks, time.Since(start))
+	elapsed := time.Since(start)
+	if !j.json && slices.Contains(sums.accepted, 0) {
+		if err := why.ask(ctx, j, client); err != nil {
+			return err
+		}
+	}
+	return j.report(sums, why, sinks, elapsed)
 }
 
 // blocks returns what gives the blocks of the files, with the resolution that is assumed.
@@ -200,10 +209,13 @@ func (j *judgeRun) check(ctx context.Context, client *kinegate.Client, yaml stri
 }
 
 // report prints the summary and closes the sinks.
-func (j *judgeRun) report(sums *tally, sinks []sink, elapsed time.Duration) error {
+func (j *judgeRun) report(sums *tally, why *reasons, sinks []sink, elapsed time.Duration) error {
 	if !j.json {
 		j.print("selection %s, digest %s", j.checked.GetSelection().GetName(), j.checked.GetSelectionDigest())
 		if err := sums.write(j.environment); err != nil {
+			return err
+		}
+		if err := why.write(j.environment, sums); err != nil {
 			return err
 		}
 	}
