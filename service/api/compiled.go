@@ -102,6 +102,9 @@ func readFile(text string, m proto.Message, compile func() error) error {
 		return err
 	}
 	for _, f := range beyond(faults, found) {
+		if misnamed(f.Field, textFaults, positions) {
+			continue
+		}
 		at := positions.Find(f.Field)
 		faults = append(faults, f.At(at.Line, at.Column))
 	}
@@ -110,6 +113,25 @@ func readFile(text string, m proto.Message, compile func() error) error {
 	})
 	return faults.Err()
 }
+
+// misnamed tells that a field is not in the text while a field beside it has a name that does
+// not exist, which may be this one mistyped.
+func misnamed(field string, textFaults []strictyaml.Fault, positions strictyaml.Positions) bool {
+	parent, missing := field, false
+	for parent != "" {
+		if _, ok := positions[parent]; ok {
+			break
+		}
+		parent, missing = parentOf(parent), true
+	}
+	return missing && slices.ContainsFunc(textFaults, func(f strictyaml.Fault) bool {
+		_, known := positions[f.Field]
+		return !known && f.Field != "" && parentOf(f.Field) == parent
+	})
+}
+
+// parentOf is the path of the field around a field; empty for the file.
+func parentOf(field string) string { return field[:max(strings.LastIndexAny(field, ".["), 0)] }
 
 // faultsOf is the list of faults that an error holds.
 func faultsOf(err error) fault.List {

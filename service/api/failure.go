@@ -92,9 +92,11 @@ func In(prefix string, err error) *Failure {
 	return &f
 }
 
-// join puts a path in front of a field, which may be empty or an index.
+// join puts a path in front of a field; either may be empty, and the field an index.
 func join(prefix, field string) string {
 	switch {
+	case prefix == "":
+		return field
 	case field == "":
 		return prefix
 	case strings.HasPrefix(field, "["):

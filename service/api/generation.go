@@ -249,16 +249,12 @@ func compileGeneration(m *kinegatev1.Generation, table *particle.Table, stop fun
 	return c, nil
 }
 
-// newDetector makes a detector; faults have paths below path.
+// newDetector makes a detector; faults have paths below path, which may be empty.
 func newDetector(seed uint64, path string, m *kinegatev1.Detector) (*detector.Detector, fault.List) {
 	f := &former{}
 	config := f.detectorForm(path, m)
 	config.Seed = seed
 	d, err := detector.New(config)
-	if path == "" {
-		f.found(err, func(field string) string { return field })
-	} else {
-		f.found(err, within(path))
-	}
+	f.found(err, within(path))
 	return d, f.faults
 }

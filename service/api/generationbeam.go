@@ -128,9 +128,15 @@ func (g *generationForm) spectrum(from, path string, m *kinegatev1.BeamSpectrum,
 		}
 		return generation.Fixed{EnergyGeV: total}
 	case *kinegatev1.BeamSpectrum_Even:
-		g.move(from+".low_gev", path+".even.min_gev")
-		g.move(from+".high_gev", path+".even.max_gev")
-		return generation.Flat{LowGeV: kind.Even.GetMinGev(), HighGeV: kind.Even.GetMaxGev()}
+		here := path + ".even"
+		g.move(from+".low_gev", here+".min_gev")
+		g.move(from+".high_gev", here+".max_gev")
+		even := generation.Flat{LowGeV: kind.Even.GetMinGev(), HighGeV: kind.Even.GetMaxGev()}
+		if even.LowGeV > 0 && !(even.HighGeV > even.LowGeV) {
+			g.faults = append(g.faults, fault.Number(here+".max_gev", even.HighGeV, "> min_gev and finite"))
+			return broken
+		}
+		return even
 	case *kinegatev1.BeamSpectrum_Bremsstrahlung:
 		here := path + ".bremsstrahlung"
 		g.move(from, here)

@@ -54,7 +54,7 @@ func TestGenerationFaults(t *testing.T) {
 		"bound":            {func(g *kinegatev1.Generation) { g.Channels[0].Bound = new(math.NaN()) }, codes.InvalidArgument, "channels[0].bound", "finite"},
 		"weighted mixture": {func(g *kinegatev1.Generation) { g.Weighted = true }, codes.InvalidArgument, "weighted", "mixture"},
 		"no beam":          {func(g *kinegatev1.Generation) { g.InitialState = nil }, codes.InvalidArgument, "initial_state", "only a decay"},
-		"range":            {func(g *kinegatev1.Generation) { g.InitialState = tagged(2, 1) }, codes.InvalidArgument, "initial_state.beam_on_target.beam.even.max_gev", "low_gev"},
+		"range":            {func(g *kinegatev1.Generation) { g.InitialState = tagged(2, 1) }, codes.InvalidArgument, "initial_state.beam_on_target.beam.even.max_gev", "> min_gev"},
 		"bremsstrahlung": {func(g *kinegatev1.Generation) {
 			g.InitialState.GetBeamOnTarget().Beam = brems(&kinegatev1.BremsstrahlungSpectrum{ElectronGev: 1, LowGev: 1.2, HighGev: 2})
 		}, codes.InvalidArgument, "initial_state.beam_on_target.beam.bremsstrahlung.electron_gev", "high_gev"},
@@ -198,6 +198,32 @@ func TestCheckDetector(t *testing.T) {
 		reply, err := s.CheckDetector(t.Context(), &kinegatev1.CheckDetectorRequest{Form: &kinegatev1.CheckDetectorRequest_Yaml{Yaml: yaml}})
 		if err != nil || len(reply.GetFaults()) != want {
 			t.Errorf("%s: %v, %v; want %d faults", yaml, reply.GetFaults(), err, want)
+		}
+	}
+}
+
+// TestFileFaultsOnce wants one fault for one mistake: neither the missing value of a field that
+// could not be read, nor the missing field whose name is mistyped.
+func TestFileFaultsOnce(t *testing.T) {
+	s := newServices(t).generation
+	const tracker = "tracker:\n  theta: {min_rad: 0.1, max_rad: 2}\n  constant: 0.01\n  angle_sigma_rad: 0.01\n  identify: true\n"
+	for yaml, want := range map[string]string{
+		tracker + "  confusions: [{from: SPECIES_PION, to: SPECIES_PIN, probability: 0.1}]\n":       "6:41 tracker.confusions[0].to",
+		tracker + "  confusions: [{from: SPECIES_PION, probability: 0.1}]\n":                        "6:16 tracker.confusions[0].to",
+		strings.Replace(tracker, "theta:", "thata:", 1):                                             "2:3 tracker.thata",
+		strings.Replace(tracker, "max_rad", "max_deg", 1):                                           "2:25 tracker.theta.max_deg",
+		strings.Replace(tracker, "angle_sigma_rad: 0.01", "angle_sigma_rad: -1", 1) + "name: a b\n": "4:3 tracker.angle_sigma_rad, 6:1 name",
+	} {
+		reply, err := s.CheckDetector(t.Context(), &kinegatev1.CheckDetectorRequest{Form: &kinegatev1.CheckDetectorRequest_Yaml{Yaml: yaml}})
+		if err != nil {
+			t.Fatal(err)
+		}
+		var got []string
+		for _, f := range reply.GetFaults() {
+			got = append(got, decimal(int64(f.GetLine()))+":"+decimal(int64(f.GetColumn()))+" "+f.GetField())
+		}
+		if strings.Join(got, ", ") != want {
+			t.Errorf("faults %v, want %s in\n%s", reply.GetFaults(), want, yaml)
 		}
 	}
 }
