@@ -105,8 +105,11 @@ func (e *environment) printAssignment(h *kinegatev1.HypothesisExplanation, i int
 	case !a.GetComplete():
 		outcome = "ended by a window before it was complete"
 	}
-	if a.GetBest() {
+	switch {
+	case a.GetBest() && a.GetPassed():
 		outcome += ", the best"
+	case a.GetBest():
+		outcome += "; the best that was possible"
 	}
 	if a.GetBeamRow() >= 0 {
 		outcome += fmt.Sprintf("; beam candidate %d with weight %g", a.GetBeamRow(), a.GetWeight())
@@ -121,12 +124,15 @@ func (e *environment) printAssignment(h *kinegatev1.HypothesisExplanation, i int
 	return e.printFit(h, a.GetFit())
 }
 
+// explainIndent indents tables like the other lines on an assignment.
+const explainIndent = 2
+
 // printWindows prints each window with its margins.
 func (e *environment) printWindows(windows []*kinegatev1.WindowExplanation) error {
 	if len(windows) == 0 {
 		return nil
 	}
-	table := text.NewTable("window", ">value", ">+-", ">above min", ">below max", "unit", "")
+	table := text.NewTable("window", ">value", ">+-", ">above min", ">below max", "unit", "").Under(explainIndent)
 	for _, w := range windows {
 		verdict := map[bool]string{true: "inside", false: "OUTSIDE"}[w.GetInside()]
 		if strings.HasPrefix(w.GetPath(), "record[") {
@@ -152,15 +158,15 @@ func (e *environment) printFit(h *kinegatev1.HypothesisExplanation, f *kinegatev
 	if f.VertexZM != nil {
 		e.print("    vertex z %s +- %s m", figure(f.GetVertexZM()), optionalFigure(f.VertexZSigmaM))
 	}
-	constraints := text.NewTable("constraint", ">before", ">after", "unit")
+	constraints := text.NewTable("constraint", ">before", ">after", "unit").Under(explainIndent)
 	for _, c := range f.GetConstraints() {
 		constraints.Row(c.GetName(), figure(c.GetBefore()), fmt.Sprintf("%.1g", c.GetAfter()), c.GetUnit())
 	}
 	if err := constraints.Write(e.out); err != nil {
 		return err
 	}
-	parameters := text.NewTable("particle", "parameter", ">measured", ">+-", ">fitted", ">pull", "unit")
-	momenta := text.NewTable("four-momentum", "", ">E", ">px", ">py", ">pz", "unit")
+	parameters := text.NewTable("particle", "parameter", ">measured", ">+-", ">fitted", ">pull", "unit").Under(explainIndent)
+	momenta := text.NewTable("four-momentum", "", ">E", ">px", ">py", ">pz", "unit").Under(explainIndent)
 	for _, p := range f.GetParticles() {
 		for _, q := range p.GetParameters() {
 			pull := ""

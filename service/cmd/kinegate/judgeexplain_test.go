@@ -32,9 +32,11 @@ func TestJudgeExplain(t *testing.T) {
 		{judgePions + " --explain 4", exitWell, "fit converged: chi-square"},
 		{judgePions + " --explain 4", exitWell, "OUTSIDE"},
 		{judgePions + " --explain 1", exitWell, "passes, the best"},
+		{judgePions + " --explain 4 --assignments 1", exitWell, "\n    window  "},
 		{judgePions + " --explain 0", exitWell, "the rule on extra objects forbids the difference"},
 		{judgePions + " --explain 999", exitUsage, "no event 999"},
 		{judgePions + " --explain 4 --assignments 0", exitUsage, "1 to 1000"},
+		{judgePions + ` --histogram "two-pions/M=0 GeV:2 GeV:4"`, exitWell, "each counted once whatever its weight"},
 		{"judge --selection " + leptonsFit + " " + leptonsEvents + ` --assume-resolution "1.5 %:1 mrad" --explain 34442568`, exitWell, "mass of mu+[0] mu-[0]"},
 		{"judge --selection " + leptonsFit + " " + leptonsEvents + " --explain 34442568", exitUsage, "state them with --assume-resolution"},
 		{"judge --selection " + leptonsFit + " " + leptonsEvents, exitUsage, "state them with --assume-resolution"},
@@ -49,6 +51,23 @@ func TestJudgeExplain(t *testing.T) {
 	if err := protojson.Unmarshal([]byte(out), &reply); err != nil || code != exitWell || reply.GetEventId() != 4 {
 		t.Errorf("code %d, %v, %s", code, err, errs)
 	}
+}
+
+// TestJudgeWithoutBudget reads what is said of events whose work budget ends, and of the best
+// assignment of one that fails.
+func TestJudgeWithoutBudget(t *testing.T) {
+	t.Parallel()
+	yaml, err := os.ReadFile(pionsSelection)
+	if err != nil {
+		t.Fatal(err)
+	}
+	name := filepath.Join(t.TempDir(), "selection.yaml")
+	short := "assignment_budget_count: 2\n" + strings.Replace(string(yaml), "fit_probability: {min: 0.01}", "fit_probability: {min: 0.99}", 1)
+	if err := os.WriteFile(name, []byte(short), 0o600); err != nil {
+		t.Fatal(err)
+	}
+	wantCommand(t, "judge --selection "+name+" "+pionsEvents, exitWell, "events ended when the work budget was used up")
+	wantCommand(t, "judge --selection "+name+" "+pionsEvents+" --explain 4", exitWell, ": fails; the best that was possible")
 }
 
 // TestJudgeOfNoText gives a file that is no text another ending than its own.

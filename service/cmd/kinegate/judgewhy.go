@@ -125,7 +125,7 @@ func (r *reasons) write(e *environment, t *tally) error {
 			}
 			return strings.Compare(a, b)
 		})
-		table, rest := text.NewTable(">", ""), r.asked
+		table, rest := text.NewTable(">", "").Under(explainIndent), r.asked
 		for _, reason := range list[:min(len(list), whyShown)] {
 			table.Row(fmt.Sprint(r.counts[h][reason]), reason)
 			rest -= r.counts[h][reason]

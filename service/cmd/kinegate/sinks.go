@@ -293,5 +293,5 @@ func (h *histogramSink) add(events []eventfile.Event, v *kinegate.Verdicts) erro
 
 func (h *histogramSink) finish(e *environment) error {
 	e.print("")
-	return h.histogram.Write(e.out, h.recorded.name, h.edge)
+	return h.histogram.Write(e.out, h.recorded.name+": accepted events, each counted once whatever its weight", h.edge)
 }

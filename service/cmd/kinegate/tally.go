@@ -3,7 +3,6 @@ package main
 import (
 	"fmt"
 	"math"
-	"strings"
 
 	kinegate "example.org/kinegate/clients/go"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
@@ -87,18 +86,26 @@ func share(part, whole int) string {
 	return fmt.Sprintf("%.2f %%", percent*float64(part)/float64(whole))
 }
 
+// endings say in words how events ended that were not judged, or not to the end.
+var endings = []struct { //nolint:gochecknoglobals // a list that nothing writes
+	status kinegatev1.EventStatus
+	words  string
+}{
+	{kinegatev1.EventStatus_EVENT_STATUS_NON_FINITE, "not judged: a value is not finite"},
+	{kinegatev1.EventStatus_EVENT_STATUS_NEGATIVE_ENERGY, "not judged: an energy or momentum is negative"},
+	{kinegatev1.EventStatus_EVENT_STATUS_NEGATIVE_SPREAD, "not judged: a standard deviation or variance is negative"},
+	{kinegatev1.EventStatus_EVENT_STATUS_OUT_OF_RANGE, "not judged: an angle, mass or degree of polarisation is out of range"},
+	{kinegatev1.EventStatus_EVENT_STATUS_OVERSIZED, "not judged: more objects or beam candidates than an event may have"},
+	{kinegatev1.EventStatus_EVENT_STATUS_EXPIRED, "not judged: the latency budget was used up before"},
+	{kinegatev1.EventStatus_EVENT_STATUS_BUDGET_USED, "ended when the work budget was used up"},
+}
+
 // write prints the summary.
 func (t *tally) write(e *environment) error {
 	e.print("%d events judged in %d blocks; the gate accepts %d (%s)", t.events, t.blockCount, t.gate, share(t.gate, t.events))
-	for _, status := range []kinegatev1.EventStatus{
-		kinegatev1.EventStatus_EVENT_STATUS_NON_FINITE, kinegatev1.EventStatus_EVENT_STATUS_NEGATIVE_ENERGY,
-		kinegatev1.EventStatus_EVENT_STATUS_NEGATIVE_SPREAD, kinegatev1.EventStatus_EVENT_STATUS_OUT_OF_RANGE,
-		kinegatev1.EventStatus_EVENT_STATUS_OVERSIZED, kinegatev1.EventStatus_EVENT_STATUS_EXPIRED,
-		kinegatev1.EventStatus_EVENT_STATUS_BUDGET_USED,
-	} {
-		if n := t.statuses[status]; n > 0 {
-			name := strings.TrimPrefix(status.String(), "EVENT_STATUS_")
-			e.print("  %d events %s", n, strings.ToLower(strings.ReplaceAll(name, "_", " ")))
+	for _, ending := range endings {
+		if n := t.statuses[ending.status]; n > 0 {
+			e.print("  %s %s", plural(int64(n), "event"), ending.words)
 		}
 	}
 	e.print("")

@@ -14,6 +14,7 @@ type Table struct {
 	heading []string
 	right   []bool
 	rows    [][]string
+	indent  string
 }
 
 // NewTable returns a table with a heading. A heading that starts with ">" makes its
@@ -28,6 +29,13 @@ func NewTable(heading ...string) *Table {
 	return t
 }
 
+// Under lets the table stand under text that is indented by some spaces more than a table
+// is by itself, and returns it.
+func (t *Table) Under(spaces int) *Table {
+	t.indent = strings.Repeat(" ", spaces)
+	return t
+}
+
 // Row adds a row; cells beyond the heading are dropped and missing ones are empty.
 func (t *Table) Row(cells ...string) {
 	row := make([]string, len(t.heading))
@@ -38,7 +46,7 @@ func (t *Table) Row(cells ...string) {
 // Rows is the number of rows.
 func (t *Table) Rows() int { return len(t.rows) }
 
-// Write prints the table, every line indented by two spaces.
+// Write prints the table, every line indented by two spaces, or more if Under says so.
 func (t *Table) Write(w io.Writer) error {
 	widths := make([]int, len(t.heading))
 	for _, row := range append([][]string{t.heading}, t.rows...) {
@@ -64,6 +72,7 @@ func (t *Table) Write(w io.Writer) error {
 
 func (t *Table) line(row []string, widths []int) string {
 	var b strings.Builder
+	b.WriteString(t.indent)
 	for i, cell := range row {
 		b.WriteString("  ")
 		pad := strings.Repeat(" ", widths[i]-utf8.RuneCountInString(cell))
