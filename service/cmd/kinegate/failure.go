@@ -36,7 +36,9 @@ func explain(err error) (text string, code int) {
 	case codes.InvalidArgument, codes.NotFound, codes.FailedPrecondition, codes.OutOfRange:
 		return describeStatus(s), exitUsage
 	case codes.Unavailable, codes.DeadlineExceeded:
-		return "no server answers in time: " + s.Message(), exitFailed
+		if reasonOf(s) == "" { // no server of ours has answered
+			return "no server answers in time: " + s.Message() + hint(s), exitFailed
+		}
 	}
 	return describeStatus(s), exitFailed
 }
@@ -47,6 +49,14 @@ func reasonOf(s *status.Status) string {
 		if info, ok := d.(*errdetails.ErrorInfo); ok {
 			return info.GetReason()
 		}
+	}
+	return ""
+}
+
+// hint says what may be behind the words of the transport.
+func hint(s *status.Status) string {
+	if strings.Contains(s.Message(), "server preface") {
+		return "\n  the server may want TLS: --tls, with --ca for an authority of your own"
 	}
 	return ""
 }

@@ -9,9 +9,13 @@ import (
 func TestWaitingForAServer(t *testing.T) {
 	s := serveAt(t)
 	s.kill()
-	later := time.AfterFunc(time.Second, s.start)
-	defer later.Stop()
+	started := make(chan struct{})
+	time.AfterFunc(time.Second, func() {
+		s.start()
+		close(started)
+	})
 	code, _, errs := command(t, "particle", "K+", "--address", s.socket("general"), "--wait")
+	<-started
 	if code != exitWell {
 		t.Errorf("code %d, says %s", code, errs)
 	}
