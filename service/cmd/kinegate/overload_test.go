@@ -19,8 +19,9 @@ import (
 )
 
 // TestOverload offers real work at 1, 2, 5 and 10 times what a server on two processors
-// can do, of which it keeps one for this work, as its callers do the other, whether or not the answers come: goodput stays, what is admitted stays fast, what is
-// not is refused at once, health never wavers, and the server recovers.
+// can do, whether or not the answers come: goodput stays, what is admitted stays fast, what
+// is not is refused at once, health never wavers, and the server recovers. The server does
+// this work on one of the processors, and its callers have the other.
 func TestOverload(t *testing.T) {
 	operations(t)
 	span := spanOf(t, "OVERLOAD_SPAN", 10*time.Second)
