@@ -7,6 +7,7 @@ import (
 	"os"
 	"path/filepath"
 	"runtime"
+	"slices"
 	"strings"
 	"testing"
 	"time"
@@ -118,6 +119,20 @@ func TestPlotChoosesAnObservable(t *testing.T) {
 		}
 		if !strings.Contains(string(picture), label) {
 			t.Errorf("%s: the picture does not say %q", line, label)
+		}
+	}
+}
+
+// TestSharpObservable holds that equal values stand in one bin, rounding included.
+func TestSharpObservable(t *testing.T) {
+	t.Parallel()
+	s := &observableSample{kind: observableKinds()[0]}
+	for k := range 100 {
+		s.values, s.weights = append(s.values, 0.547862*(1+float64(k-50)*1e-15)), append(s.weights, 1)
+	}
+	for _, bins := range []int{24, observableBins} {
+		if most := slices.Max(s.histogram(bins).Counts); most != 100 {
+			t.Errorf("%d bins: the fullest has %v of 100", bins, most)
 		}
 	}
 }

@@ -146,7 +146,8 @@ func (s *observableSample) histogram(bins int) *text.Histogram {
 	}
 	if s.isSharp() {
 		margin := 1e-3 * max(high, 1e-9)
-		low, high = low-margin, high+margin
+		half := margin / float64(bins) // of a bin, so that no edge is at the value
+		low, high = low-margin-half, low+margin-half
 	}
 	h := text.NewHistogram(bins, low, math.Nextafter(high, math.Inf(1)))
 	for i, x := range s.values {
