@@ -206,16 +206,20 @@ func (FitStatus) EnumDescriptor() ([]byte, []int) {
 
 // Fit moves the measured parameters of an assignment as little as their
 // covariances let them, until all its constraints hold. An assignment whose fit
-// does not converge is not accepted, whatever the condition says. Events without
-// a covariance of their objects cannot be fitted: a block without that column is
-// refused.
+// does not converge is not accepted, whatever the condition says. One whose fit
+// converges is accepted however improbable it is, unless the condition has a
+// fit_probability window: constraints far out of reach are often met by pulling a
+// measurement, such as the beam energy, far from its value, with probability 0.
+// Events without a covariance of their objects cannot be fitted: a block without
+// that column is refused.
 //
 // The particles of the fit are the products that do not decay in the reaction,
 // and the initial particles where four-momentum is conserved. Each has the mass
 // of its particle; a mass constraint is needed only for a product that decays or
-// for several together. The degrees of freedom are the constraints less the
-// unmeasured parameters, three for a missing product; a fit with fewer than 0 is
-// refused.
+// for several together. A mass that the other constraints bind already is refused,
+// with the same value or another. The degrees of freedom are the constraints less
+// the unmeasured parameters, three for a missing product; a fit with fewer than 0
+// is refused.
 type Fit struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
 	// Which components of the four-momentum the products share with the initial

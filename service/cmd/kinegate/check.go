@@ -3,6 +3,7 @@ package main
 import (
 	"fmt"
 	"os"
+	"slices"
 	"strings"
 
 	"github.com/spf13/cobra"
@@ -71,8 +72,24 @@ func (e *environment) describeCheck(name string, r *kinegatev1.CheckSelectionRes
 	if err := t.Write(e.out); err != nil {
 		return err
 	}
+	for i, h := range r.GetSelection().GetHypotheses() {
+		// A fit without degrees of freedom has no probability to look at.
+		if h.GetFit() != nil && r.GetHypotheses()[i].GetDegreesOfFreedom() > 0 && !looksAtProbability(h.GetCondition()) {
+			e.print("  %s has a fit and no fit_probability window in its condition: every fit that converges is accepted, however improbable",
+				h.GetName())
+		}
+	}
 	e.print("  largest reply to a block with all entries: %.1f MiB", float64(r.GetLargestReplyByteCount())/(1<<20))
 	return nil
+}
+
+// looksAtProbability reports whether a window of the condition is on the fit probability.
+func looksAtProbability(c *kinegatev1.Condition) bool {
+	parts := slices.Concat(c.GetAllOf(), c.GetAnyOf())
+	if c.GetNot() != nil {
+		parts = append(parts, c.GetNot())
+	}
+	return c.GetWindow().GetFitProbability() != nil || slices.ContainsFunc(parts, looksAtProbability)
 }
 
 // faultText is a fault in the form that editors jump to.
