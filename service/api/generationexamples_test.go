@@ -1,0 +1,121 @@
+package api
+
+import (
+	"os"
+	"path/filepath"
+	"strings"
+	"testing"
+
+	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+)
+
+// exampleTexts are the texts of the example files in a folder of testdata, by name.
+func exampleTexts(t *testing.T, folder string) map[string]string {
+	t.Helper()
+	files, err := filepath.Glob(filepath.Join("../../testdata", folder, "*.yaml"))
+	if err != nil || len(files) == 0 {
+		t.Fatalf("no examples in %s: %v", folder, err)
+	}
+	texts := map[string]string{}
+	for _, file := range files {
+		yaml, err := os.ReadFile(file)
+		if err != nil {
+			t.Fatal(err)
+		}
+		name := filepath.Base(file)
+		if texts[name] = string(yaml); !strings.HasPrefix(string(yaml), "# ") {
+			t.Errorf("%s does not begin with what it shows", name)
+		}
+	}
+	return texts
+}
+
+// readGenerationExamples reads the example generations, which have no faults.
+func readGenerationExamples(t *testing.T, s *Services) map[string]*kinegatev1.Generation {
+	t.Helper()
+	examples := map[string]*kinegatev1.Generation{}
+	for name, yaml := range exampleTexts(t, "generation") {
+		reply, err := s.generation.CheckGeneration(t.Context(), &kinegatev1.CheckGenerationRequest{
+			Form: &kinegatev1.CheckGenerationRequest_Yaml{Yaml: yaml},
+		})
+		if err != nil || len(reply.GetFaults()) > 0 {
+			t.Fatalf("%s: %v, %v", name, reply.GetFaults(), err)
+		}
+		if got := reply.GetGeneration().GetName() + ".yaml"; got != name {
+			t.Errorf("%s has the name of %s", name, got)
+		}
+		examples[name] = reply.GetGeneration()
+	}
+	return examples
+}
+
+// readDetectorExamples reads the example detectors, which have no faults.
+func readDetectorExamples(t *testing.T, s *Services) map[string]*kinegatev1.Detector {
+	t.Helper()
+	examples := map[string]*kinegatev1.Detector{}
+	for name, yaml := range exampleTexts(t, "detectors") {
+		reply, err := s.generation.CheckDetector(t.Context(), &kinegatev1.CheckDetectorRequest{
+			Form: &kinegatev1.CheckDetectorRequest_Yaml{Yaml: yaml},
+		})
+		if err != nil || len(reply.GetFaults()) > 0 {
+			t.Fatalf("%s: %v, %v", name, reply.GetFaults(), err)
+		}
+		examples[name] = reply.GetDetector()
+	}
+	return examples
+}
+
+// TestExamplesOfGenerations makes events with each example.
+func TestExamplesOfGenerations(t *testing.T) {
+	t.Parallel()
+	s := newServices(t)
+	const events = 300
+	for name, g := range readGenerationExamples(t, s) {
+		t.Run(name, func(t *testing.T) {
+			summary := mustGenerate(t, s, &kinegatev1.GenerateEventsRequest{Generation: g, EventCount: events}).summary()
+			if summary.GetEventCount() != events || summary.GetEmptyCount() > 0 || len(summary.GetRemarks()) > 0 {
+				t.Errorf("summary %v", summary)
+			}
+		})
+	}
+}
+
+// TestExamplesOfDetectors measures a mixture in which each detector has something to see.
+func TestExamplesOfDetectors(t *testing.T) {
+	t.Parallel()
+	s := newServices(t)
+	for name, d := range readDetectorExamples(t, s) {
+		t.Run(name, func(t *testing.T) {
+			g := &kinegatev1.Generation{
+				Seed: 1, InitialState: tagged(1.2, 2.4), Detector: d,
+				Channels: reactions("gamma p -> K+ Lambda, Lambda -> p pi-", "gamma p -> p pi0, pi0 -> gamma gamma", "gamma p -> n pi+"),
+			}
+			summary := mustGenerate(t, s, &kinegatev1.GenerateEventsRequest{Generation: g, EventCount: 300}).summary()
+			if summary.GetSeenEventCount() < 75 || len(summary.GetRemarks()) > 0 {
+				t.Errorf("summary %v", summary)
+			}
+		})
+	}
+}
+
+// TestGenerationExamplesShowEveryField holds that every field that a generation or a detector
+// can have, and every value of its enums, stands in an example.
+func TestGenerationExamplesShowEveryField(t *testing.T) {
+	t.Parallel()
+	s := newServices(t)
+	shown, all := map[string]bool{}, map[string]bool{}
+	for _, g := range readGenerationExamples(t, s) {
+		noteFields(g.ProtoReflect(), shown)
+	}
+	for _, d := range readDetectorExamples(t, s) {
+		noteFields(d.ProtoReflect(), shown)
+	}
+	everyField((&kinegatev1.Generation{}).ProtoReflect().Descriptor(), all)
+	delete(all, "kinegate.v1.Reaction.inclusive") // a fault here: there would be no products
+	for name := range all {
+		if !shown[name] {
+			t.Errorf("no example has %s", name)
+		}
+	}
+	t.Logf("%d fields and values of enums", len(all))
+}
