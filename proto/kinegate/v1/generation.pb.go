@@ -299,7 +299,7 @@ type GenerationChannel struct {
 	Energy *EnergyDependence `protobuf:"bytes,5,opt,name=energy,proto3" json:"energy,omitempty"`
 	// Direction of one product in the centre of mass; absent means isotropic.
 	Angle *ProductionAngle `protobuf:"bytes,6,opt,name=angle,proto3" json:"angle,omitempty"`
-	// Unweighting bound as a fraction of the analytic ceiling of the weight, at least 0;
+	// Unweighting bound as a fraction of the analytic ceiling of the weight, above 0;
 	// absent means 1, which no phase-space weight exceeds. Lower is faster; an event
 	// above it carries the weight over the bound and is counted. MeasureBound measures.
 	Bound *float64 `protobuf:"fixed64,7,opt,name=bound,proto3,oneof" json:"bound,omitempty"`

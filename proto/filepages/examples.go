@@ -7,9 +7,10 @@ import (
 	"strings"
 )
 
-// examples lists the example files of a folder with the sentence that each begins with.
-func examples(folder string) (string, error) {
-	files, err := filepath.Glob(filepath.Join(folder, "*.yaml"))
+// examples lists the example files of a folder of testdata with the sentence that each begins
+// with.
+func examples(top, folder string) (string, error) {
+	files, err := filepath.Glob(filepath.Join(top, "testdata", folder, "*.yaml"))
 	if err != nil {
 		return "", err
 	}
@@ -23,7 +24,7 @@ func examples(folder string) (string, error) {
 			return "", err
 		}
 		base := filepath.Base(name)
-		fmt.Fprintf(&list, "- [`%s`](../testdata/selections/%s): %s\n", base, base, firstSentence(string(text)))
+		fmt.Fprintf(&list, "- [`%s`](../testdata/%s/%s): %s\n", base, folder, base, firstSentence(string(text)))
 	}
 	return list.String(), nil
 }

@@ -11,32 +11,63 @@ import (
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 )
 
-const head = `# Fields of a selection file
+// kind is a kind of file with a page of its own.
+type kind struct {
+	// name is that of the page; examples is the folder of testdata with its examples.
+	name, examples string
+	root           protoreflect.MessageDescriptor
+	// rules are what else a reader should know, as a sentence; check is the command that names
+	// the faults of such a file.
+	rules, check string
+}
 
-Made from the comments of the contract by ` + "`go run ./proto/selectionpage`" + `; do not edit.
+// kinds are the kinds of files that people write.
+func kinds() []kind {
+	return []kind{
+		{
+			"selection", "selections", (&kinegatev1.Selection{}).ProtoReflect().Descriptor(),
+			"Limits are half-open, [min, max).", "kinegate check FILE",
+		},
+		{
+			"generation", "generation", (&kinegatev1.Generation{}).ProtoReflect().Descriptor(),
+			"All numbers of the examples are invented.", "kinegate generate --request FILE --events 0",
+		},
+		{
+			"detector", "detectors", (&kinegatev1.Detector{}).ProtoReflect().Descriptor(),
+			"All numbers of the examples are invented.", "kinegate generate REACTION... --detector FILE --events 0",
+		},
+	}
+}
 
-A selection file is YAML: the fields of [Selection](#selection) by these names. A field that is
-left out is absent. Numbers are plain decimals in the unit that their name ends in; limits are
-half-open, [min, max). Unknown and doubled fields, anchors and tags are faults, and
-` + "`kinegate check FILE`" + ` names every fault with its line and column. Examples, each
-with what it shows at its head:
+// head is the text in front of the fields.
+func (k kind) head() string {
+	return fmt.Sprintf(`# Fields of a %[1]s file
 
-`
+Made from the comments of the contract by `+"`go run ./proto/filepages %[1]s`"+`; do not edit.
+
+A %[1]s file is YAML: the fields of [%[2]s](#%[1]s) by these names. A field that is left out is
+absent. Numbers are plain decimals in the unit that their name ends in. %[3]s Unknown
+and doubled fields, anchors and tags are faults, and
+`+"`%[4]s`"+`
+names every fault with its line and column. Examples, each with what it shows at its head:
+
+`, k.name, k.root.Name(), k.rules, k.check)
+}
 
 // page writes the page from the protos and the examples below the top folder.
-func page(top string) (string, error) {
-	p := writer{}
+func (k kind) page(top string) (string, error) {
+	p := writer{kind: k}
 	var err error
 	if p.comments, err = comments(filepath.Join(top, "proto", "kinegate", "v1")); err != nil {
 		return "", err
 	}
-	list, err := examples(filepath.Join(top, "testdata", "selections"))
+	list, err := examples(top, k.examples)
 	if err != nil {
 		return "", err
 	}
-	p.text.WriteString(head + list)
+	p.text.WriteString(k.head() + list)
 	seen := map[protoreflect.FullName]bool{}
-	queue := []protoreflect.Descriptor{(&kinegatev1.Selection{}).ProtoReflect().Descriptor()}
+	queue := []protoreflect.Descriptor{k.root}
 	for len(queue) > 0 {
 		d := queue[0]
 		queue = queue[1:]
@@ -57,6 +88,7 @@ func page(top string) (string, error) {
 
 // writer collects the page and what is wrong with it.
 type writer struct {
+	kind     kind
 	comments map[string]string
 	text     strings.Builder
 	problems []error
@@ -82,7 +114,7 @@ func (p *writer) message(d protoreflect.MessageDescriptor) []protoreflect.Descri
 	var refers []protoreflect.Descriptor
 	for i := range fields.Len() {
 		f := fields.Get(i)
-		value, other := valueOf(f)
+		value, other := p.valueOf(f)
 		if other != nil {
 			refers = append(refers, other)
 		}
@@ -100,8 +132,9 @@ func (p *writer) message(d protoreflect.MessageDescriptor) []protoreflect.Descri
 	return refers
 }
 
-// valueOf says in words what a field takes, and returns the message or enum it refers to.
-func valueOf(f protoreflect.FieldDescriptor) (text string, refers protoreflect.Descriptor) {
+// valueOf says in words what a field takes, and returns the message or enum it refers to, unless
+// that has a page of its own.
+func (p *writer) valueOf(f protoreflect.FieldDescriptor) (text string, refers protoreflect.Descriptor) {
 	switch f.Kind() {
 	case protoreflect.MessageKind:
 		refers = f.Message()
@@ -119,7 +152,16 @@ func valueOf(f protoreflect.FieldDescriptor) (text string, refers protoreflect.D
 		text = f.Kind().String()
 	}
 	if refers != nil {
-		text = fmt.Sprintf("[%s](#%s)", refers.Name(), strings.ToLower(string(refers.Name())))
+		file := ""
+		for _, other := range kinds() {
+			if other.name != p.kind.name && refers.FullName() == other.root.FullName() {
+				file = other.name + ".md"
+			}
+		}
+		text = fmt.Sprintf("[%s](%s#%s)", refers.Name(), file, strings.ToLower(string(refers.Name())))
+		if file != "" {
+			refers = nil
+		}
 	}
 	if f.IsList() {
 		text = "list of " + text
