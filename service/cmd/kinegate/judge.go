@@ -27,11 +27,12 @@ func judgeCommand(p program) *cobra.Command {
 		Use:   "judge --selection FILE EVENTS.csv...",
 		Short: "Judge measured events from CSV files against a selection",
 		Long: "judge streams events from CSV files, or from .kgb files of kinegate generate, to a server,\n" +
-			"which judges them against a selection,\n" +
-			"and prints a summary. Columns: run, event; px1, py1, pz1, m1 or p1, theta1, phi1 or pt1,\n" +
-			"eta1, phi1, m1 for each object (GeV, rad); class1 (photon, positive, negative, neutral),\n" +
-			"q1 (charge) or pid1 (particle number); beam_energy1, beam_sigma1, beam_time1 (GeV, GeV, ns)\n" +
-			"for each tagged candidate. Other columns are kept for --compare.",
+			"which judges them against a selection, and prints a summary, with the reasons against the\n" +
+			"first 100 events for each hypothesis that accepts nothing. Columns: run, event; px1, py1,\n" +
+			"pz1, m1 or p1, theta1, phi1 or pt1, eta1, phi1, m1 for each object (GeV, rad); class1\n" +
+			"(photon, positive, negative, neutral), q1 (charge) or pid1 (particle number); beam_energy1,\n" +
+			"beam_sigma1, beam_time1 (GeV, GeV, ns) for each tagged candidate. Other columns are kept for\n" +
+			"--compare.",
 		Example: `  kinegate judge --selection dimuon.yaml dimuon_2011A.csv
   kinegate judge --selection dimuon.yaml dimuon_2011A.csv --out verdicts.csv --histogram "dimuon/M=2 GeV:110 GeV:27"
   kinegate judge --selection dimuon.yaml dimuon_2011A.csv --compare M=dimuon/M
@@ -167,9 +168,8 @@ func (j *judgeRun) blocks(source *eventSource) (next func() (*batch[eventfile.Ev
 // refused says of events without the covariances that a fit needs how to state them. That,
 // like everything else for which a block is refused, is a fault of what was given.
 func (j *judgeRun) refused(err error) error {
-	var rejected *rejectedBlock
 	message, field := "", ""
-	if errors.As(err, &rejected) {
+	if rejected, ok := errors.AsType[*rejectedBlock](err); ok {
 		message, field = rejected.Error(), rejected.GetField()
 	} else if s, ok := status.FromError(err); ok && reasonOf(s) == string(api.BlockInvalid) {
 		message = describeStatus(s)
@@ -183,7 +183,8 @@ func (j *judgeRun) refused(err error) error {
 	case message == "":
 		return err
 	case strings.TrimPrefix(field, "block.") == "covariance" && j.assume == "":
-		return badInput("%s\n  the events have no covariances, for which .csv has no columns: state them with --assume-resolution, such as \"1.5 %%:1 mrad\"", message)
+		return badInput("%s\n  the events have no covariances, for which .csv has no columns: "+
+			"state them with --assume-resolution, such as \"1.5 %%:1 mrad\"", message)
 	}
 	return badInput("%s", message)
 }

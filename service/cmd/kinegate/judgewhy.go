@@ -60,7 +60,7 @@ func (r *reasons) ask(ctx context.Context, j *judgeRun, client *kinegate.Client)
 			ctx, cancel := j.calling(ctx)
 			reply, err := client.Selections.ExplainVerdict(ctx, &kinegatev1.ExplainVerdictRequest{
 				Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: j.checked.GetSelection()}},
-				Block:     block, EventIndex: int32(at), MaxAssignmentCount: 1, //nolint:gosec // at most 4,096
+				Block:     block, EventIndex: int32(at), MaxAssignmentCount: 1,
 			})
 			cancel()
 			if err != nil {
