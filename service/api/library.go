@@ -1,6 +1,8 @@
 package api
 
 import (
+	"cmp"
+	"fmt"
 	"slices"
 	"strings"
 	"sync"
@@ -73,7 +75,10 @@ func (l *Library) find(ref *kinegatev1.SelectionReference) (*compiledSelection, 
 	defer l.mu.Unlock()
 	versions := l.byName[ref.GetName()]
 	if len(versions) == 0 {
-		return nil, Refuse(SelectionNotFound, "no selection is named so", "name", ref.GetName(), "known", strings.Join(l.namesLocked(), ", "))
+		known := strings.Join(l.namesLocked(), ", ")
+		return nil, Refuse(SelectionNotFound,
+			fmt.Sprintf("no selection is named %q; known: %s", ref.GetName(), cmp.Or(known, "none")),
+			"name", ref.GetName(), "known", known)
 	}
 	if ref.GetSelectionDigest() == "" {
 		return versions[0], nil

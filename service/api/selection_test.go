@@ -205,6 +205,25 @@ func TestJudgeBlockRefusals(t *testing.T) {
 	}
 }
 
+// TestUnknownSelectionIsNamed: the sentence says which name is unknown and which are known.
+func TestUnknownSelectionIsNamed(t *testing.T) {
+	t.Parallel()
+	library := newServices(t).deps.Library
+	ask := func() string {
+		_, err := library.find(&kinegatev1.SelectionReference{Name: "nowhere"})
+		return Explain(err).Message
+	}
+	if got, want := ask(), `no selection is named "nowhere"; known: none`; got != want {
+		t.Errorf("without selections: %s, want %s", got, want)
+	}
+	if _, err := library.Add("name: pairs\nhypotheses:\n- name: pair\n  reaction: '-> mu+ mu-'\n"); err != nil {
+		t.Fatal(err)
+	}
+	if got, want := ask(), `no selection is named "nowhere"; known: pairs`; got != want {
+		t.Errorf("with one selection: %s, want %s", got, want)
+	}
+}
+
 // TestLibraryKeepsVersions: the newest wins, the last four stay, a fifth pushes the
 // oldest out, and a faulty text changes nothing.
 func TestLibraryKeepsVersions(t *testing.T) {
