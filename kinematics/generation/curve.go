@@ -20,7 +20,7 @@ type Curve struct {
 // faults appends what is wrong with the curve as a density on [low, high].
 func (c *Curve) faults(list fault.List, field string, low, high float64) fault.List {
 	if len(c.X) < 2 || len(c.X) != len(c.Y) {
-		return append(list, fault.New(fault.Invalid, field+".x.length", strconv.Itoa(len(c.X)), "as many as y, at least 2"))
+		return append(list, fault.New(fault.Invalid, field+".x", strconv.Itoa(len(c.X))+" points", "as many as values beside them, at least 2"))
 	}
 	for i, x := range c.X {
 		if !(x >= low && x <= high) {

@@ -74,13 +74,16 @@ func NewUntil(config Config, stop func() bool) (*Generator, error) {
 	return g, nil
 }
 
+// sevenDigits is a number for a sentence.
+func sevenDigits(x float64) string { return strconv.FormatFloat(x, 'g', 7, 64) }
+
 // open sets the plan's threshold, or returns the fault of a closed channel.
 func (g *Generator) open(p *plan) *fault.Error {
 	_, high := g.source.limits()
 	if !(high > p.root.floors) {
 		return fault.New(fault.BelowThreshold, "", "", "").In("generation.New").Because(
-			"the channel is closed: sqrt(s) reaches " + fault.Text(high) + " GeV, the lightest final state needs " +
-				fault.Text(p.root.floors) + " GeV, " + fault.Text(p.root.floors-high) + " GeV more")
+			"the channel is closed: sqrt(s) reaches " + sevenDigits(high) + " GeV, the lightest final state needs " +
+				sevenDigits(p.root.floors) + " GeV, " + sevenDigits(p.root.floors-high) + " GeV more")
 	}
 	p.threshold = p.root.floors
 	if p.channel.Energy.Kind != PhaseSpaceRate && high > p.root.nominal {

@@ -64,7 +64,7 @@ func productFaults(list fault.List, field string, products []Product, depth int)
 		return append(list, fault.New(fault.Invalid, field, "", "decays nested at most "+strconv.Itoa(maxDepth)+" deep"))
 	}
 	if len(products) < 2 || len(products) > MaxBodies {
-		list = append(list, fault.New(fault.Invalid, field+".length", strconv.Itoa(len(products)), "2 to "+strconv.Itoa(MaxBodies)))
+		list = append(list, fault.New(fault.Invalid, field, strconv.Itoa(len(products))+" products", "2 to "+strconv.Itoa(MaxBodies)+" products"))
 	}
 	for i := range products {
 		list = products[i].faults(list, field+"["+strconv.Itoa(i)+"]", depth)

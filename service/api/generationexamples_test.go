@@ -119,3 +119,31 @@ func TestGenerationExamplesShowEveryField(t *testing.T) {
 	}
 	t.Logf("%d fields and values of enums", len(all))
 }
+
+// TestLawRemark holds that a channel which is made isotropic although a law for it exists says
+// so, and no other.
+func TestLawRemark(t *testing.T) {
+	t.Parallel()
+	s := newServices(t)
+	total := &kinegatev1.GenerationInitialState{Kind: &kinegatev1.GenerationInitialState_Total{
+		Total: &kinegatev1.TotalMotion{SqrtSGev: new(3.0)},
+	}}
+	for text, law := range map[string]string{
+		"gamma gamma -> e+ e-": "ANGULAR_LAW_PAIR_CREATION", "e+ e- -> gamma gamma": "ANGULAR_LAW_ANNIHILATION",
+		"gamma e- -> gamma e-": "ANGULAR_LAW_COMPTON", "gamma p -> p eta": "", "e+ e- -> pi+ pi-": "", "gamma gamma -> pi+ pi-": "",
+	} {
+		for _, angle := range []*kinegatev1.ProductionAngle{nil, {Product: "products[0]", Polar: &kinegatev1.ProductionAngle_SlopePerGev2{SlopePerGev2: 1}}} {
+			g := &kinegatev1.Generation{InitialState: total, Channels: []*kinegatev1.GenerationChannel{{Reaction: text, Angle: angle}}}
+			reply, err := s.generation.CheckGeneration(t.Context(), &kinegatev1.CheckGenerationRequest{
+				Form: &kinegatev1.CheckGenerationRequest_Generation{Generation: g},
+			})
+			if err != nil || len(reply.GetFaults()) > 0 {
+				t.Fatalf("%s: %v, %v", text, reply.GetFaults(), err)
+			}
+			remarks := strings.Join(reply.GetChannels()[0].GetRemarks(), "; ")
+			if told := law != "" && angle == nil; told != strings.Contains(remarks, "isotropic") || told && !strings.Contains(remarks, law) {
+				t.Errorf("%s with angle %v: remarks %q", text, angle, remarks)
+			}
+		}
+	}
+}

@@ -23,11 +23,11 @@ func TestGenerationFaults(t *testing.T) {
 		field string
 		says  string
 	}{
-		"closed": {func(g *kinegatev1.Generation) { g.InitialState = tagged(0.2, 0.5) }, codes.FailedPrecondition, "channels[0]", "GeV more"},
+		"closed": {func(g *kinegatev1.Generation) { g.InitialState = tagged(0.2, 0.5) }, codes.FailedPrecondition, "channels[0]", "lightest final state needs 1.503932 GeV, 0.1553674 GeV more"},
 		"thirteen products": {func(g *kinegatev1.Generation) {
 			g.Channels = reactions("gamma p -> p" + strings.Repeat(" pi0", 12))
 			g.InitialState = tagged(20, 21)
-		}, codes.InvalidArgument, "channels[0].reaction.length", "2 to 12"},
+		}, codes.InvalidArgument, "channels[0].reaction", `"13 products": invalid, allowed: 2 to 12 products`},
 		"line shape that no mass fits": {func(g *kinegatev1.Generation) {
 			g.Channels = reactions("gamma p -> p rho0, rho0 -> pi+ pi-")
 			g.Channels[0].Decays = []*kinegatev1.DecayOptions{{Product: "rho0", LineShape: &kinegatev1.LineShape{LowGev: 0.1, HighGev: 0.2}}}
@@ -84,6 +84,11 @@ func TestGenerationFaults(t *testing.T) {
 		"decay that is none": {func(g *kinegatev1.Generation) {
 			g.Channels[0].Decays = []*kinegatev1.DecayOptions{{Product: "p"}}
 		}, codes.InvalidArgument, "channels[0].decays[0].product", "decays"},
+		"points": {func(g *kinegatev1.Generation) {
+			g.Channels[0].Energy = &kinegatev1.EnergyDependence{Kind: &kinegatev1.EnergyDependence_Table{
+				Table: &kinegatev1.EnergyTable{SqrtSGev: []float64{1, 2, 3}, Rates: []float64{1, 1}},
+			}}
+		}, codes.InvalidArgument, "channels[0].energy.table.sqrt_s_gev", "as many as values beside them, at least 2"},
 		"density": {func(g *kinegatev1.Generation) {
 			g.Channels[0].Decays = []*kinegatev1.DecayOptions{{Product: "omega", Density: &kinegatev1.DecayOptions_VectorToThree{}}}
 		}, codes.InvalidArgument, "channels[0].decays[0].vector_to_three", "3 daughters"},

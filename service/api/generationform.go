@@ -144,7 +144,7 @@ func (g *generationForm) channel(i int, m *kinegatev1.GenerationChannel) {
 	c.Products = products
 	g.config.Channels = append(g.config.Channels, c)
 	g.outline = append(g.outline, &kinegatev1.GenerationOutline{
-		Name: c.Name, Reaction: r.String(), Products: references(r), Remarks: remarks,
+		Name: c.Name, Reaction: r.String(), Products: references(r), Remarks: append(remarks, lawRemarks(r, m.GetAngle())...),
 	})
 }
 
@@ -299,44 +299,4 @@ func (g *generationForm) angle(path string, r *reaction.Reaction, m *kinegatev1.
 		a.Phi = g.curve(path+".azimuth", azimuth.GetAnglesRad(), azimuth.GetDensities())
 	}
 	return a
-}
-
-// law converts an angular law, which must be one for the particles of the reaction.
-func (g *generationForm) law(path string, r *reaction.Reaction, p *particle.Particle, law kinegatev1.AngularLaw) generation.AngularLaw {
-	out := make([]*particle.Particle, 0, len(r.Top))
-	for _, top := range r.Top {
-		out = append(out, &r.Products[top].Particle)
-	}
-	two := len(r.Initial) == 2 && len(out) == 2
-	var in [2]*particle.Particle
-	if two {
-		in = [2]*particle.Particle{&r.Initial[0], &r.Initial[1]}
-	}
-	allowed := "a law of the contract"
-	switch law {
-	case kinegatev1.AngularLaw_ANGULAR_LAW_PAIR_CREATION:
-		if two && isPhoton(in[0]) && isPhoton(in[1]) && isLeptonPair(out[0], out[1]) {
-			return generation.PairCreation
-		}
-		allowed = "only for gamma gamma -> l+ l-"
-	case kinegatev1.AngularLaw_ANGULAR_LAW_ANNIHILATION:
-		if two && isLeptonPair(in[0], in[1]) && isPhoton(out[0]) && isPhoton(out[1]) {
-			return generation.Annihilation
-		}
-		allowed = "only for l+ l- -> gamma gamma"
-	case kinegatev1.AngularLaw_ANGULAR_LAW_COMPTON:
-		if two && isPhoton(in[0]) != isPhoton(in[1]) && isPhoton(out[0]) != isPhoton(out[1]) && isPhoton(p) {
-			return generation.ComptonScattering
-		}
-		allowed = "only for gamma e- -> gamma e-, and for its photon"
-	case kinegatev1.AngularLaw_ANGULAR_LAW_UNSPECIFIED:
-	}
-	g.need(path, law.String(), allowed)
-	return generation.NoLaw
-}
-
-func isPhoton(p *particle.Particle) bool { return p.Number == 22 }
-
-func isLeptonPair(a, b *particle.Particle) bool {
-	return isChargedLepton(a) && a.AntiNumber == b.Number
 }

@@ -301,7 +301,8 @@ type GenerationChannel struct {
 	Angle *ProductionAngle `protobuf:"bytes,6,opt,name=angle,proto3" json:"angle,omitempty"`
 	// Unweighting bound as a fraction of the analytic ceiling of the weight, above 0;
 	// absent means 1, which no phase-space weight exceeds. Lower is faster; an event
-	// above it carries the weight over the bound and is counted. MeasureBound measures.
+	// above it carries the weight over the bound and is counted. MeasureBound and
+	// `kinegate bound` measure one.
 	Bound *float64 `protobuf:"fixed64,7,opt,name=bound,proto3,oneof" json:"bound,omitempty"`
 	// What replaces the tables for single decays.
 	Decays []*DecayOptions `protobuf:"bytes,8,rep,name=decays,proto3" json:"decays,omitempty"`

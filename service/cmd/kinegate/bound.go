@@ -37,6 +37,9 @@ type boundRun struct {
 	generateRun
 
 	draws int64
+	// unbounded are the channels that no bound makes faster, such as one of two products at
+	// one energy, of which every draw is an event.
+	unbounded []string
 }
 
 // boundRoom is the room above the largest weight that was drawn.
@@ -79,7 +82,13 @@ func (b *boundRun) run(ctx context.Context, reactions []string) error {
 	if b.json {
 		return nil
 	}
-	return t.Write(b.out)
+	if err := t.Write(b.out); err != nil {
+		return err
+	}
+	for _, name := range b.unbounded {
+		b.print("  %s: no bound below 1 fits; leave it out", name)
+	}
+	return nil
 }
 
 // row adds what was measured of a channel.
@@ -91,6 +100,9 @@ func (b *boundRun) row(t *text.Table, c *kinegatev1.GenerationChannel, m *kinega
 	bound, kept := min(1, boundRoom*m.GetLargest()), 0.0
 	if bound > 0 {
 		kept = m.GetMean() / bound
+	}
+	if bound == 1 {
+		b.unbounded = append(b.unbounded, name)
 	}
 	t.Row(name, significant(m.GetLargest()), significant(m.GetMean()), significant(bound), fmt.Sprintf("%.1f %%", 100*kept))
 }

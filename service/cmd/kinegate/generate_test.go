@@ -302,6 +302,7 @@ func TestBound(t *testing.T) {
 	generation := write(t, "generation.yaml", generationText)
 	wantCommand(t, `bound "gamma p -> p pi+ pi- pi0" --beam "2 GeV" --draws 20000`, exitWell, "share kept")
 	wantCommand(t, `bound --request `+generation+` --draws 1000`, exitWell, "one pion")
+	wantCommand(t, `bound "gamma p -> p eta" --beam "1 GeV" --draws 100`, exitWell, "gamma p -> p eta: no bound below 1 fits; leave it out")
 	wantCommand(t, `bound "gamma p -> p eta" --beam "1 GeV" --json --draws 100`, exitWell, `"largest"`)
 	wantCommand(t, `bound "gamma p -> p eta" --beam "700 MeV"`, exitNo, "the channel is closed")
 	wantCommand(t, `bound`, exitUsage, "--request")
