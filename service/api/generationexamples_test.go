@@ -72,6 +72,7 @@ func TestExamplesOfGenerations(t *testing.T) {
 	const events = 300
 	for name, g := range readGenerationExamples(t, s) {
 		t.Run(name, func(t *testing.T) {
+			t.Parallel()
 			summary := mustGenerate(t, s, &kinegatev1.GenerateEventsRequest{Generation: g, EventCount: events}).summary()
 			if summary.GetEventCount() != events || summary.GetEmptyCount() > 0 || len(summary.GetRemarks()) > 0 {
 				t.Errorf("summary %v", summary)
@@ -86,6 +87,7 @@ func TestExamplesOfDetectors(t *testing.T) {
 	s := newServices(t)
 	for name, d := range readDetectorExamples(t, s) {
 		t.Run(name, func(t *testing.T) {
+			t.Parallel()
 			g := &kinegatev1.Generation{
 				Seed: 1, InitialState: tagged(1.2, 2.4), Detector: d,
 				Channels: reactions("gamma p -> K+ Lambda, Lambda -> p pi-", "gamma p -> p pi0, pi0 -> gamma gamma", "gamma p -> n pi+"),

@@ -50,7 +50,10 @@ func generateCommand(p program) *cobra.Command {
 	f.StringVar(&g.detectorFile, "detector", "", "detector file (YAML), in place of the detector of --request; without one there is only the truth")
 	f.StringVar(&g.outFile, "out", "", "write the events to this file: .csv, .parquet or .kgb")
 	f.IntVar(&g.show, "show", 2, "number of events to print")
-	f.StringVar(&g.observable, "observable", "", `what is drawn of the true events: the mass, or the energy or polar angle in the laboratory, of a product or of the sum of several, such as "mass omega", "energy K+", "angle p, pi0[1]"; with --plot alone the mass of the first product without a sharp one, or else the energy of the first product`)
+	f.StringVar(&g.observable, "observable", "", "what is drawn of the true events: the mass, or the energy or polar angle in the laboratory,\n"+
+		"of a product or of the sum of several, such as \"mass omega\", \"energy K+\", \"angle p, pi0[1]\";\n"+
+		"with --plot alone the mass of the first product without a sharp one, or else the energy of\n"+
+		"the first product")
 	g.picture.flag(c)
 	return c
 }
@@ -166,26 +169,12 @@ func (g *generateRun) run(ctx context.Context, reactions []string) error {
 
 // generation reads the files and flags.
 func (g *generateRun) generation(ctx context.Context, client *kinegate.Client, reactions []string) (*kinegatev1.Generation, error) {
-	m := &kinegatev1.Generation{Seed: g.seed, Weighted: g.weighted}
+	m, err := g.named(reactions)
 	if g.requestFile != "" {
-		var err error
-		if m, err = g.readGeneration(ctx, client); err != nil {
-			return nil, err
-		}
-		if g.seeded {
-			m.Seed = g.seed
-		}
-	} else {
-		var err error
-		if m.Channels, err = g.channels(reactions); err != nil {
-			return nil, err
-		}
-		if m.InitialState, err = g.initialState(reactions[0]); err != nil {
-			return nil, err
-		}
+		m, err = g.readGeneration(ctx, client)
 	}
-	if g.detectorFile == "" {
-		return m, nil
+	if err != nil || g.detectorFile == "" {
+		return m, err
 	}
 	yaml, err := os.ReadFile(g.detectorFile)
 	if err != nil {
@@ -201,6 +190,19 @@ func (g *generateRun) generation(ctx context.Context, client *kinegate.Client, r
 	}
 	m.Detector = reply.GetDetector()
 	return m, g.faults(g.detectorFile, reply.GetFaults())
+}
+
+// named is a generation of reactions and flags; nil without a reaction.
+func (g *generateRun) named(reactions []string) (*kinegatev1.Generation, error) {
+	if len(reactions) == 0 {
+		return nil, nil //nolint:nilnil // a file says it all
+	}
+	channels, err := g.channels(reactions)
+	if err != nil {
+		return nil, err
+	}
+	state, err := g.initialState(reactions[0])
+	return &kinegatev1.Generation{Seed: g.seed, Weighted: g.weighted, Channels: channels, InitialState: state}, err
 }
 
 // channels are reactions with equal shares.
@@ -221,7 +223,7 @@ func (g *generateRun) channels(reactions []string) ([]*kinegatev1.GenerationChan
 	return list, nil
 }
 
-// readGeneration reads the generation file on the server.
+// readGeneration reads the generation file on the server; a seed that was given is its seed.
 func (g *generateRun) readGeneration(ctx context.Context, client *kinegate.Client) (*kinegatev1.Generation, error) {
 	yaml, err := os.ReadFile(g.requestFile)
 	if err != nil {
@@ -234,6 +236,9 @@ func (g *generateRun) readGeneration(ctx context.Context, client *kinegate.Clien
 	})
 	if err != nil {
 		return nil, err
+	}
+	if g.seeded && reply.GetGeneration() != nil {
+		reply.Generation.Seed = g.seed
 	}
 	return reply.GetGeneration(), g.faults(g.requestFile, reply.GetFaults())
 }
