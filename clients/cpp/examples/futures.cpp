@@ -15,10 +15,13 @@ kinegate::v1::Selection Pi0() {
   hypothesis->set_name("pi0");
   hypothesis->set_reaction("pi0 -> gamma gamma");
   auto* window = hypothesis->mutable_condition()->mutable_window()->mutable_invariant_mass();
-  window->add_products("pi0");
+  window->add_products("gamma[0]");
+  window->add_products("gamma[1]");
   window->set_min_gev(0.11);
   window->set_max_gev(0.16);
-  hypothesis->add_record()->mutable_invariant_mass()->add_products("pi0");
+  auto* recorded = hypothesis->add_record()->mutable_invariant_mass();
+  recorded->add_products("gamma[0]");
+  recorded->add_products("gamma[1]");
   return selection;
 }
 
