@@ -25,14 +25,20 @@ void CheckLength(const char* name, std::size_t length, std::size_t due) {
   }
 }
 
-// Rows finds the rows of a range of events by their offsets.
+// Rows finds the rows of a range of events by their offsets, which lie within the total.
 Range Rows(const char* name, const Column<std::int32_t>& offsets, std::size_t events, Range of) {
   CheckLength(name, offsets.size(), events + 1);
-  const std::int32_t first = offsets[of.first];
-  const std::int32_t last = offsets[of.first + of.count];
-  if (first < 0 || last < first) {
+  const std::size_t end = of.first + of.count;
+  const std::int32_t first = offsets[of.first], last = offsets[end], total = offsets[events];
+  bool rises = first >= 0;
+  for (std::size_t i = of.first; i < end; ++i) rises = rises && offsets[i] <= offsets[i + 1];
+  if (!rises) {
     Fail(std::string(name) + " runs from " + std::to_string(first) + " to " + std::to_string(last) +
          "; offsets start at 0 and never fall");
+  }
+  if (last > total) {
+    Fail(std::string(name) + " runs to " + std::to_string(last) + ", beyond the total of " +
+         std::to_string(total));
   }
   return {static_cast<std::size_t>(first), static_cast<std::size_t>(last - first)};
 }
@@ -131,6 +137,42 @@ void SetVertex(const EventArrays& events, Range of, v1::EventBlock* block) {
   }
 }
 
+void SetVertexGroup(const EventArrays& events, std::size_t objects, Range of_objects, Range of,
+                    v1::EventBlock* block) {
+  const VertexGroupArrays& group = events.vertex_group;
+  if (!group.groups.present()) return;
+  const Range rows = Rows("vertex_group.offsets", group.offsets, events.event_count(), of);
+  const auto all = static_cast<std::size_t>(group.offsets[events.event_count()]);
+  auto* g = block->mutable_vertex_group();
+  g->set_groups(Copy("vertex_group.groups", group.groups, objects, of_objects));
+  g->set_offsets(CopyOffsets(group.offsets, of));
+  g->set_x_m(Copy("vertex_group.x_m", group.x_m, all, rows));
+  g->set_y_m(Copy("vertex_group.y_m", group.y_m, all, rows));
+  g->set_z_m(Copy("vertex_group.z_m", group.z_m, all, rows));
+  if (group.covariance_m2.present()) {
+    g->set_covariance_m2(Copy("vertex_group.covariance_m2", group.covariance_m2, all, rows, kCovariance));
+  }
+}
+
+void SetClusterPosition(const EventArrays& events, std::size_t objects, Range of, v1::EventBlock* block) {
+  const ClusterPositionArrays& position = events.cluster_position;
+  if (!position.x_m.present()) return;
+  auto* p = block->mutable_cluster_position();
+  p->set_x_m(Copy("cluster_position.x_m", position.x_m, objects, of));
+  p->set_y_m(Copy("cluster_position.y_m", position.y_m, objects, of));
+  p->set_z_m(Copy("cluster_position.z_m", position.z_m, objects, of));
+}
+
+void SetPolarisation(const EventArrays& events, Range of, v1::EventBlock* block) {
+  const PolarisationArrays& polarisation = events.polarisation;
+  if (!polarisation.linear_degree.present()) return;
+  const std::size_t n = events.event_count();
+  auto* p = block->mutable_polarisation();
+  p->set_linear_degree(Copy("polarisation.linear_degree", polarisation.linear_degree, n, of));
+  p->set_plane_rad(Copy("polarisation.plane_rad", polarisation.plane_rad, n, of));
+  p->set_circular_degree(Copy("polarisation.circular_degree", polarisation.circular_degree, n, of));
+}
+
 }  // namespace
 
 v1::EventBlock MakeBlock(const EventArrays& events, std::size_t first, std::size_t count) {
@@ -161,6 +203,9 @@ v1::EventBlock MakeBlock(const EventArrays& events, std::size_t first, std::size
   }
   SetBeam(events, of, &block);
   SetVertex(events, of, &block);
+  SetVertexGroup(events, all, rows, of, &block);
+  SetClusterPosition(events, all, rows, &block);
+  SetPolarisation(events, of, &block);
   return block;
 }
 

@@ -3,8 +3,11 @@
 #include <algorithm>
 #include <atomic>
 #include <condition_variable>
+#include <exception>
 #include <mutex>
+#include <optional>
 #include <random>
+#include <string>
 #include <thread>
 #include <utility>
 
@@ -24,6 +27,21 @@ constexpr milliseconds kLastBackoff{1'000};
 milliseconds Jitter(milliseconds time, std::mt19937& random) {
   std::uniform_real_distribution<double> factor(0.75, 1.25);
   return milliseconds(static_cast<milliseconds::rep>(static_cast<double>(time.count()) * factor(random)));
+}
+
+// Guard calls what the caller of the library gave it, and returns what that threw.
+template <typename F>
+std::optional<Error> Guard(const std::string& who, const F& call) {
+  try {
+    call();
+    return std::nullopt;
+  } catch (const Error& error) {
+    return error;
+  } catch (const std::exception& error) {
+    return Error(who + " threw: " + error.what());
+  } catch (...) {
+    return Error(who + " threw something that is no std::exception");
+  }
 }
 
 }  // namespace
@@ -93,7 +111,7 @@ class JudgeStream::Runner {
       if (queue_->done()) return queue_->End(std::nullopt);
       if (closed() || !end.passing) return queue_->End(std::move(end.error));
       ++break_count_;
-      if (options_.on_break) options_.on_break(end.error);
+      if (auto failed = CallOnBreak(end.error)) return queue_->End(std::move(failed));
       if (auto failed = Resume(std::move(end.error))) return queue_->End(std::move(failed));
     }
   }
@@ -152,9 +170,21 @@ class JudgeStream::Runner {
   // Deliver runs handlers until there are no more answers.
   void Deliver() {
     while (auto answer = queue_->Take()) {
-      if (answer->handler) answer->handler(std::move(answer->verdicts));
+      const auto failed = Guard("a handler", [&] {
+        if (answer->handler) answer->handler(std::move(answer->verdicts));
+      });
+      if (failed) {
+        queue_->End(failed);
+        Close();
+      }
       queue_->Taken();
     }
+  }
+
+  std::optional<Error> CallOnBreak(const Error& why) {
+    return Guard("on_break", [&] {
+      if (options_.on_break) options_.on_break(why);
+    });
   }
 
   std::shared_ptr<Link> current() {

@@ -70,7 +70,8 @@ class Link : public std::enable_shared_from_this<Link> {
   const std::unique_ptr<v1::SelectionService::Stub> stub_;
   grpc::ClientContext context_;
   std::unique_ptr<Stream> stream_;
-  std::int64_t turn_ = 0;
+  // Of the queue. Atomic, since Cut may come while Open begins.
+  std::atomic<std::int64_t> turn_{0};
   std::atomic<Clock::time_point> last_seen_{};
 
   std::mutex mutex_;  // guards what follows

@@ -124,6 +124,12 @@ void Queue::Settle(std::int64_t turn, v1::VerdictBlock block) {
   if (sent_ == 0 || verdicts.sequence() != waiting_.front()->frame.block().sequence()) {
     throw Error("verdict " + std::to_string(verdicts.sequence()) + " was not due");
   }
+  const std::size_t events = waiting_.front()->frame.block().event_ids().size() / sizeof(std::int64_t);
+  if (!verdicts.rejected() && verdicts.event_count() != events) {
+    throw Error("verdict " + std::to_string(verdicts.sequence()) + " answers " +
+                std::to_string(verdicts.event_count()) + " events where " + std::to_string(events) +
+                " are due");
+  }
   const std::shared_ptr<Pending> oldest = std::move(waiting_.front());
   waiting_.pop_front();
   --sent_;
@@ -180,9 +186,9 @@ void Queue::End(std::optional<Error> why) {
   std::deque<std::shared_ptr<Pending>> unanswered;
   {
     const std::lock_guard lock(mutex_);
+    if (!why_) why_ = why;
     if (ended_) return;
     ended_ = interrupted_ = true;
-    why_ = std::move(why);
     unanswered.swap(waiting_);
     sent_ = 0;
     room_.notify_all();
@@ -190,7 +196,7 @@ void Queue::End(std::optional<Error> why) {
     answers_.notify_all();
     over_.notify_all();
   }
-  const Error error = why_ ? *why_ : Error("the stream was closed", grpc::StatusCode::CANCELLED);
+  const Error error = why ? *why : Error("the stream was closed", grpc::StatusCode::CANCELLED);
   for (const auto& pending : unanswered) {
     if (pending->failed) pending->failed(error);
   }

@@ -75,8 +75,8 @@ class Queue {
   // last block, kOver after the turn.
   Next WaitNext(std::int64_t turn, Clock::time_point until);
 
-  // Settle takes a verdict. It throws where that is unsound or not on the oldest block, or that was
-  // not sent.
+  // Settle takes a verdict. It throws where that is unsound, not on the oldest block or on another
+  // number of events, or where that block was not sent.
   void Settle(std::int64_t turn, v1::VerdictBlock block);
   // last_answered is the sequence of the last verdict.
   std::int64_t last_answered() const;
@@ -90,7 +90,8 @@ class Queue {
   // handler has run.
   std::optional<Answer> Take();
   void Taken();
-  // End ends the stream, with the reason where it did not end well. Only the first call counts.
+  // End ends the stream, with the reason where it did not end well. The first reason counts, also
+  // after a good end: the last handler may fail when every verdict is there.
   void End(std::optional<Error> why);
 
  private:

@@ -26,6 +26,14 @@ bool Bit(const std::string& bits, std::size_t i) {
   throw Error("verdict block " + std::to_string(block.sequence()) + ": " + what);
 }
 
+// CheckIndex checks an index against how many there are.
+template <typename T>
+void CheckIndex(const v1::VerdictBlock& block, const char* what, T index, T count) {
+  if (index < T{0} || index >= count) {
+    Fail(block, std::string(what) + " " + std::to_string(index) + " of " + std::to_string(count));
+  }
+}
+
 void CheckSize(const v1::VerdictBlock& block, const char* name, std::size_t size, std::size_t due) {
   if (size != due) {
     Fail(block, std::string(name) + " has " + std::to_string(size) + " bytes where " + std::to_string(due) +
@@ -90,22 +98,29 @@ Verdicts::Verdicts(v1::VerdictBlock block) : block_(std::move(block)) {
 }
 
 v1::EventStatus Verdicts::status(std::size_t event) const {
+  CheckIndex(block_, "event", event, event_count());
   return static_cast<v1::EventStatus>(static_cast<unsigned char>(block_.statuses()[event]));
 }
 
 bool Verdicts::gate(std::size_t event) const {
+  CheckIndex(block_, "event", event, event_count());
   return Bit(block_.gate(), event);
 }
 
 bool Verdicts::accepted(int hypothesis, std::size_t event) const {
+  CheckIndex(block_, "hypothesis", hypothesis, block_.hypotheses_size());
+  CheckIndex(block_, "event", event, event_count());
   return Bit(block_.hypotheses(hypothesis).accepted(), event);
 }
 
 int Verdicts::best(int group, std::size_t event) const {
+  CheckIndex(block_, "group", group, block_.groups_size());
+  CheckIndex(block_, "event", event, event_count());
   return At<std::int16_t>(block_.groups(group).best(), event);
 }
 
 std::vector<Entry> Verdicts::entries(std::size_t event) const {
+  CheckIndex(block_, "event", event, event_count());
   std::vector<Entry> found;
   if (!block_.has_entries()) return found;
   const v1::EntryColumns& e = block_.entries();

@@ -93,6 +93,29 @@ TEST(MakeBlock, FaultsNameColumnAndBothLengths) {
   EXPECT_THROW(MakeBlock(sample.arrays(), 2, 2), Error);
 }
 
+TEST(MakeBlock, ASliceWhoseRowsLieBeyondTheTotalIsRefused) {
+  const testing::Sample sample(3);
+  const auto told = [](const EventArrays& arrays) -> std::string {
+    try {
+      MakeBlock(arrays, 1, 1);
+      return "";
+    } catch (const Error& error) {
+      return error.what();
+    }
+  };
+  EventArrays arrays = sample.arrays();
+  std::vector<std::int32_t> beyond = sample.offsets;
+  beyond[2] = beyond[3] + 1'000'000;
+  arrays.object_offsets = beyond;
+  EXPECT_NE(told(arrays).find("object_offsets runs to"), std::string::npos) << told(arrays);
+
+  arrays = sample.arrays();
+  const std::vector<std::int32_t> candidates{0, 0, 1'000'000, 1};
+  const std::vector<double> one{1};
+  arrays.beam = {candidates, one, one, one};
+  EXPECT_NE(told(arrays).find("beam.offsets runs to"), std::string::npos) << told(arrays);
+}
+
 v1::VerdictBlock ThreeVerdicts(std::int64_t sequence) {
   v1::VerdictBlock block;
   block.set_sequence(sequence);
@@ -130,6 +153,19 @@ TEST(Verdicts, ReadTheirColumns) {
   EXPECT_EQ(entry.status, v1::ENTRY_STATUS_REJECTED);
   EXPECT_EQ(entry.assignment, (std::vector<std::int16_t>{0, -1}));
   EXPECT_EQ(entry.observables, std::vector<double>{0.25});
+}
+
+TEST(Verdicts, IndicesOutOfRangeAreTold) {
+  const Verdicts v(ThreeVerdicts(4));
+  EXPECT_THROW(v.status(3), Error);
+  EXPECT_THROW(v.late(3), Error);
+  EXPECT_THROW(v.gate(3), Error);
+  EXPECT_THROW(v.accepted(0, 3), Error);
+  EXPECT_THROW(v.accepted(1, 0), Error);
+  EXPECT_THROW(v.accepted(-1, 0), Error);
+  EXPECT_THROW(v.best(0, 3), Error);
+  EXPECT_THROW(v.best(1, 0), Error);
+  EXPECT_THROW(v.entries(3), Error);
 }
 
 TEST(Verdicts, UnsoundBlocksAreRefused) {
@@ -202,6 +238,20 @@ TEST_F(QueueRules, VerdictsOutOfOrderAreRefused) {
   queue_.Settle(turn_, ThreeVerdicts(5));
   EXPECT_THROW(queue_.Settle(turn_, ThreeVerdicts(5)), Error);
   EXPECT_THROW(queue_.Settle(turn_, ThreeVerdicts(6)), Error) << "it was not sent";
+}
+
+TEST_F(QueueRules, AVerdictAnswersAsManyEventsAsTheBlockHas) {
+  v1::VerdictBlock two;
+  two.set_sequence(5);
+  two.set_event_count(2);
+  two.set_statuses(std::string{1, 1});
+  two.set_gate(std::string{1});
+  EXPECT_THROW(queue_.Settle(turn_, two), Error);
+  v1::VerdictBlock refused;
+  refused.set_sequence(5);
+  refused.mutable_rejected()->set_reason("BLOCK_INVALID");
+  queue_.Settle(turn_, refused);
+  EXPECT_EQ(queue_.last_answered(), 5) << "a block that was rejected has no events";
 }
 
 TEST_F(QueueRules, ResumeBeginsWithTheFirstWithoutAVerdict) {

@@ -109,6 +109,41 @@ TEST(JudgeStream, ABadBlockIsRejectedAndTheStreamGoesOn) {
   EXPECT_EQ(stream.break_count(), 0);
 }
 
+TEST(JudgeStream, AHandlerThatThrowsEndsTheStreamWithItsError) {
+  Server server;
+  const Sample sample(10);
+  for (const bool last : {true, false}) {
+    JudgeStream stream(Gate(server.address()), OpenWith(PairSelection()));
+    stream.Push(MakeBlock(sample.arrays()), [](const Verdicts&) { throw std::runtime_error("disk full"); });
+    if (!last) std::this_thread::sleep_for(milliseconds(300));
+    try {
+      if (!last) stream.Push(MakeBlock(sample.arrays()));
+      stream.Finish();
+      ADD_FAILURE() << "the stream ended well";
+    } catch (const Error& error) {
+      EXPECT_NE(std::string(error.what()).find("disk full"), std::string::npos) << error.what();
+    }
+  }
+  JudgeStream stream(Gate(server.address()), OpenWith(PairSelection()));
+  stream.Push(MakeBlock(sample.arrays()), [](const Verdicts&) { throw 7; });
+  EXPECT_THROW(stream.Finish(), Error);
+}
+
+TEST(JudgeStream, OnBreakThatThrowsEndsTheStreamWithItsError) {
+  Server server;
+  const Sample sample(10);
+  JudgeOptions options;
+  options.on_break = [](const Error&) { throw std::runtime_error("no pager"); };
+  JudgeStream stream(Gate(server.address()), OpenWith(PairSelection()), options);
+  server.Kill();
+  try {
+    stream.Push(MakeBlock(sample.arrays())).get();
+    ADD_FAILURE() << "a verdict of a dead server";
+  } catch (const Error& error) {
+    EXPECT_NE(std::string(error.what()).find("no pager"), std::string::npos) << error.what();
+  }
+}
+
 TEST(JudgeStream, RefusalsCarryReasonAndField) {
   Server server;
   v1::JudgeOpen open;

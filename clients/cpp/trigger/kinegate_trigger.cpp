@@ -19,10 +19,24 @@
 namespace kinegate::trigger {
 namespace {
 
+constexpr char kAbout[] =
+    "Has events judged, from a .kgb file at a rate (--events) or from a ring in shared memory (--ring),\n"
+    "and prints latencies and counts. Blocks go out when they hold --block events or when the oldest\n"
+    "has waited for --gather_us.\n"
+    "A file keeps every column. The ring carries momentum, theta, phi, class and measured mask of up to\n"
+    "16 objects, and up to 16 beam candidates; no covariances, species masks, vertices, vertex groups,\n"
+    "cluster positions or polarisation, so that a selection with a fit rejects its blocks. Objects and\n"
+    "candidates beyond 16 are counted as objects_left_out. A ring without an event for --silence_s is\n"
+    "taken for dead.\n"
+    "Exit codes: 0; 1 where the stream failed, blocks were rejected or the ring died; 2 for a bad flag\n"
+    "or file.\n"
+    "Flags, with their defaults:";
+constexpr std::int64_t kMostEvents = 4096;  // of a block
+
 v1::JudgeOpen Opening(const Options& options) {
   v1::JudgeOpen open;
   *open.mutable_selection() = Named(options.text("selection"));
-  if (!options.text("budget_ms").empty()) open.set_latency_budget_s(options.number("budget_ms") / 1e3);
+  if (!options.text("budget_ms").empty()) open.set_latency_budget_s(options.number("budget_ms", 1e6) / 1e3);
   return open;
 }
 
@@ -45,9 +59,12 @@ Gate At(const Options& options) {
 }
 
 std::unique_ptr<Source> From(const Options& options) {
-  if (!options.text("ring").empty()) return FromRing(options.text("ring"));
-  return FromFile(options.text("events"), options.number("rate"),
-                  std::chrono::seconds(static_cast<int>(options.number("seconds"))));
+  if (!options.text("ring").empty()) {
+    return FromRing(options.text("ring"),
+                    std::chrono::duration<double>(options.number("silence_s", kMostSeconds)));
+  }
+  return FromFile(options.text("events"), options.number("rate", kMostRate),
+                  std::chrono::duration<double>(options.number("seconds", kMostSeconds)));
 }
 
 int Main(int argc, char** argv) {
@@ -62,13 +79,18 @@ int Main(int argc, char** argv) {
                          {"gather_us", "1000"},
                          {"budget_ms", ""},
                          {"late", "accept"},
+                         {"silence_s", "10"},
                          {"ca", ""},
                          {"certificate", ""},
                          {"key", ""},
                          {"server_name", ""}});
+  if (options.help()) {
+    std::cout << kAbout << options.usage() << "\n";
+    return 0;
+  }
+  const auto most = static_cast<std::size_t>(options.whole("block", 1, kMostEvents));
+  const std::chrono::microseconds gather(options.whole("gather_us", 1, 1'000'000));
   const auto source = From(options);
-  const auto most = static_cast<std::size_t>(options.number("block"));
-  const std::chrono::microseconds gather(static_cast<int>(options.number("gather_us")));
   Report report;
   JudgeStream stream(At(options), Opening(options), Upkeep(options));
   const auto begun = Clock::now();
@@ -80,8 +102,9 @@ int Main(int argc, char** argv) {
   }
   const std::chrono::duration<double> time = Clock::now() - begun;
   stream.Finish();
-  report.Print(std::cout, source->lost_count(), stream.break_count(), time);
-  return 0;
+  report.Print(std::cout, *source, stream.break_count(), time);
+  if (!source->fault().empty()) std::cerr << source->fault() << "\n";
+  return source->fault().empty() && report.rejected_blocks() == 0 ? 0 : 1;
 }
 
 }  // namespace

@@ -9,7 +9,10 @@ namespace kinegate::trigger {
 void Report::Add(const Verdicts& verdicts, const std::vector<Clock::time_point>& arrived) {
   const auto now = Clock::now();
   ++blocks_;
-  if (verdicts.rejected()) ++rejected_blocks_;
+  if (verdicts.rejected() && ++rejected_blocks_ == 1) {
+    const v1::Rejection& why = verdicts.rejection();
+    first_rejection_ = why.reason() + ": " + (why.field().empty() ? "" : why.field() + ": ") + why.message();
+  }
   for (const auto at : arrived) {
     latencies_.push_back(std::chrono::duration<double, std::micro>(now - at).count());
   }
@@ -24,7 +27,7 @@ void Report::Add(const Verdicts& verdicts, const std::vector<Clock::time_point>&
   }
 }
 
-void Report::Print(std::ostream& out, std::int64_t lost, std::int64_t breaks,
+void Report::Print(std::ostream& out, const Source& source, std::int64_t breaks,
                    std::chrono::duration<double> time) {
   std::sort(latencies_.begin(), latencies_.end());
   const auto at = [this](double quantile) {
@@ -36,8 +39,10 @@ void Report::Print(std::ostream& out, std::int64_t lost, std::int64_t breaks,
       << " blocks, " << static_cast<double>(latencies_.size()) / time.count() << " Hz\n"
       << "latency_us p50 " << at(0.5) << " p90 " << at(0.9) << " p99 " << at(0.99) << " p99.9 " << at(0.999)
       << " max " << at(1) << "\n"
-      << "accepted " << accepted_ << " late " << late_ << " unsound " << unsound_ << " lost " << lost
-      << " rejected_blocks " << rejected_blocks_ << " breaks " << breaks << "\n";
+      << "accepted " << accepted_ << " late " << late_ << " unsound " << unsound_ << " lost "
+      << source.lost_count() << " rejected_blocks " << rejected_blocks_ << " breaks " << breaks
+      << " objects_left_out " << source.left_out_count() << "\n";
+  if (rejected_blocks_ > 0) out << "first rejection: " << first_rejection_ << "\n";
 }
 
 }  // namespace kinegate::trigger

@@ -18,11 +18,11 @@ namespace kinegate::trigger {
 // Header stands before the slots. Each index has a cache line of its own, so that writer and
 // reader do not take it from each other.
 struct Ring::Header {
-  static constexpr std::uint64_t kMagic = 0x31676e69726b67;  // "gkring1"
+  static constexpr std::uint64_t kMagic = 0x32676e69726b67;  // "gkring2"
   std::atomic<std::uint64_t> magic;
   std::uint32_t slot_count, slot_size;
   alignas(64) std::atomic<std::uint64_t> written;
-  std::atomic<std::int64_t> lost;
+  std::atomic<std::int64_t> lost, left_out;
   std::atomic<bool> finished;
   alignas(64) std::atomic<std::uint64_t> read;
 };
@@ -38,6 +38,16 @@ void* Map(const std::string& name, int file, std::size_t size) {
   ::close(file);
   if (memory == MAP_FAILED) Fail(name, std::strerror(errno));
   return memory;
+}
+
+// Room is how many of a count a slot keeps.
+std::int32_t Room(std::int32_t count, std::size_t most) {
+  return std::clamp(count, 0, static_cast<std::int32_t>(most));
+}
+
+// Beyond is how many it does not.
+std::int64_t Beyond(std::int32_t count, std::size_t most) {
+  return std::max<std::int64_t>(count - static_cast<std::int64_t>(most), 0);
 }
 
 }  // namespace
@@ -99,6 +109,9 @@ bool Ring::Write(const Slot& slot) {
     header_->lost.fetch_add(1, std::memory_order_relaxed);
     return false;
   }
+  header_->left_out.fetch_add(
+      Beyond(slot.object_count, kRingObjects) + Beyond(slot.candidate_count, kRingCandidates),
+      std::memory_order_relaxed);
   slots()[at & (header_->slot_count - 1)] = slot;
   header_->written.store(at + 1, std::memory_order_release);
   return true;
@@ -126,6 +139,25 @@ std::int64_t Ring::lost_count() const {
   return header_->lost.load(std::memory_order_relaxed);
 }
 
+std::int64_t Ring::left_out_count() const {
+  return header_->left_out.load(std::memory_order_relaxed);
+}
+
+std::string LeftOut(const Events& events) {
+  std::string names;
+  const auto name = [&names](const char* column, bool there) {
+    if (there) names += (names.empty() ? "" : ", ") + std::string(column);
+  };
+  const auto restricts = [](std::uint8_t mask) { return mask != 0; };
+  name("species masks", std::any_of(events.species.begin(), events.species.end(), restricts));
+  name("covariances", !events.covariance.empty());
+  name("vertices", !events.vertex[0].empty());
+  name("vertex groups", !events.groups.empty());
+  name("cluster positions", !events.cluster[0].empty());
+  name("polarisation", !events.polarisation[0].empty());
+  return names;
+}
+
 Slot MakeSlot(const Events& events, std::size_t i) {
   Slot slot{};
   slot.id = events.ids[i];
@@ -133,17 +165,18 @@ Slot MakeSlot(const Events& events, std::size_t i) {
     std::copy_n(from.begin() + first, count, to);
   };
   const std::int32_t object = events.offsets[i], candidate = events.beam_offsets[i];
-  slot.object_count = std::min(events.offsets[i + 1] - object, static_cast<std::int32_t>(kRingObjects));
-  slot.candidate_count =
-      std::min(events.beam_offsets[i + 1] - candidate, static_cast<std::int32_t>(kRingCandidates));
-  copy(events.values[0], object, slot.object_count, slot.momentum_gev);
-  copy(events.values[1], object, slot.object_count, slot.theta_rad);
-  copy(events.values[2], object, slot.object_count, slot.phi_rad);
-  copy(events.classes, object, slot.object_count, slot.classes);
-  copy(events.measured, object, slot.object_count, slot.measured);
-  copy(events.beam_energy, candidate, slot.candidate_count, slot.beam_energy_gev);
-  copy(events.beam_sigma, candidate, slot.candidate_count, slot.beam_sigma_gev);
-  copy(events.beam_time, candidate, slot.candidate_count, slot.beam_time_ns);
+  slot.object_count = events.offsets[i + 1] - object;
+  slot.candidate_count = events.beam_offsets[i + 1] - candidate;
+  const std::int32_t objects = Room(slot.object_count, kRingObjects);
+  const std::int32_t candidates = Room(slot.candidate_count, kRingCandidates);
+  copy(events.values[0], object, objects, slot.momentum_gev);
+  copy(events.values[1], object, objects, slot.theta_rad);
+  copy(events.values[2], object, objects, slot.phi_rad);
+  copy(events.classes, object, objects, slot.classes);
+  copy(events.measured, object, objects, slot.measured);
+  copy(events.beam_energy, candidate, candidates, slot.beam_energy_gev);
+  copy(events.beam_sigma, candidate, candidates, slot.beam_sigma_gev);
+  copy(events.beam_time, candidate, candidates, slot.beam_time_ns);
   return slot;
 }
 
@@ -151,17 +184,19 @@ void AppendSlot(const Slot& slot, Events* events) {
   const auto append = [](const auto* from, std::int32_t count, auto* to) {
     to->insert(to->end(), from, from + count);
   };
+  const std::int32_t objects = Room(slot.object_count, kRingObjects);
+  const std::int32_t candidates = Room(slot.candidate_count, kRingCandidates);
   events->ids.push_back(slot.id);
-  append(slot.momentum_gev, slot.object_count, &events->values[0]);
-  append(slot.theta_rad, slot.object_count, &events->values[1]);
-  append(slot.phi_rad, slot.object_count, &events->values[2]);
-  append(slot.classes, slot.object_count, &events->classes);
-  append(slot.measured, slot.object_count, &events->measured);
-  append(slot.beam_energy_gev, slot.candidate_count, &events->beam_energy);
-  append(slot.beam_sigma_gev, slot.candidate_count, &events->beam_sigma);
-  append(slot.beam_time_ns, slot.candidate_count, &events->beam_time);
-  events->offsets.push_back(events->offsets.back() + slot.object_count);
-  events->beam_offsets.push_back(events->beam_offsets.back() + slot.candidate_count);
+  append(slot.momentum_gev, objects, &events->values[0]);
+  append(slot.theta_rad, objects, &events->values[1]);
+  append(slot.phi_rad, objects, &events->values[2]);
+  append(slot.classes, objects, &events->classes);
+  append(slot.measured, objects, &events->measured);
+  append(slot.beam_energy_gev, candidates, &events->beam_energy);
+  append(slot.beam_sigma_gev, candidates, &events->beam_sigma);
+  append(slot.beam_time_ns, candidates, &events->beam_time);
+  events->offsets.push_back(events->offsets.back() + objects);
+  events->beam_offsets.push_back(events->beam_offsets.back() + candidates);
 }
 
 }  // namespace kinegate::trigger

@@ -14,11 +14,12 @@ namespace kinegate::trigger {
 constexpr std::size_t kRingObjects = 16;     // most objects of an event
 constexpr std::size_t kRingCandidates = 16;  // most beam candidates of an event
 
-// Slot is an event as it lies in the ring, measured in momentum and angles.
+// Slot is an event as it lies in the ring, measured in momentum and angles. It has no room for
+// covariances, species masks, vertices, vertex groups, cluster positions or polarisation.
 struct Slot {
   std::int64_t id;
-  std::int64_t arrived_ns;  // on the monotonic clock of the machine
-  std::int32_t object_count, candidate_count;
+  std::int64_t arrived_ns;                     // on the monotonic clock of the machine
+  std::int32_t object_count, candidate_count;  // as measured; the slot keeps those it has room for
   double momentum_gev[kRingObjects], theta_rad[kRingObjects], phi_rad[kRingObjects];
   std::uint8_t classes[kRingObjects], measured[kRingObjects];
   double beam_energy_gev[kRingCandidates], beam_sigma_gev[kRingCandidates], beam_time_ns[kRingCandidates];
@@ -47,6 +48,8 @@ class Ring {
   bool finished() const;
   // lost_count is how many events found the ring full.
   std::int64_t lost_count() const;
+  // left_out_count is how many objects and candidates of events in the ring found no room in a slot.
+  std::int64_t left_out_count() const;
 
  private:
   struct Header;
@@ -61,7 +64,9 @@ class Ring {
 
 // MakeSlot takes event i of some events; objects and candidates beyond a slot's room are left out.
 Slot MakeSlot(const Events& events, std::size_t i);
-// AppendSlot appends the event of a slot.
+// LeftOut names the columns of some events that a slot has no room for; empty for none.
+std::string LeftOut(const Events& events);
+// AppendSlot appends the event of a slot, of whose counts no more is believed than there is room.
 void AppendSlot(const Slot& slot, Events* events);
 
 }  // namespace kinegate::trigger

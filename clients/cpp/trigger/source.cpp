@@ -2,6 +2,8 @@
 
 #include <algorithm>
 #include <cstdint>
+#include <sstream>
+#include <string>
 #include <thread>
 #include <utility>
 
@@ -16,10 +18,10 @@ constexpr std::chrono::microseconds kLook{20};
 // that a stall shows as latency of every event that it held up.
 class FileSource : public Source {
  public:
-  FileSource(Events events, double rate_hz, std::chrono::seconds time)
+  FileSource(Events events, double rate_hz, std::chrono::duration<double> time)
       : events_(std::move(events)),
         period_(1e9 / rate_hz),
-        total_(static_cast<std::size_t>(rate_hz * static_cast<double>(time.count()))) {}
+        total_(static_cast<std::size_t>(rate_hz * time.count())) {}
 
   bool Take(std::size_t most, std::chrono::microseconds gather, Batch* batch) override {
     if (next_ == total_) return false;
@@ -50,11 +52,13 @@ class FileSource : public Source {
 
 class RingSource : public Source {
  public:
-  explicit RingSource(const std::string& name) : ring_(Ring::Join(name)) {}
+  RingSource(const std::string& name, std::chrono::duration<double> silence)
+      : name_(name), silence_(silence), ring_(Ring::Join(name)) {}
 
   bool Take(std::size_t most, std::chrono::microseconds gather, Batch* batch) override {
-    events_.Clear();
+    events_ = Events();
     batch->arrived.clear();
+    const auto begun = Clock::now();
     while (events_.ids.size() < most) {
       const Slot* slot = ring_.Read();
       if (slot != nullptr) {
@@ -64,6 +68,12 @@ class RingSource : public Source {
       } else if (!events_.ids.empty() && Clock::now() - batch->arrived.front() > gather) {
         break;
       } else if (ring_.finished()) {
+        break;
+      } else if (events_.ids.empty() && Clock::now() - begun > silence_) {
+        std::ostringstream message;
+        message << "ring " << name_ << ": no event for " << silence_.count()
+                << " s and no end, so its writer is taken to be dead";
+        fault_ = message.str();
         break;
       } else {
         std::this_thread::sleep_for(kLook);
@@ -76,20 +86,26 @@ class RingSource : public Source {
   }
 
   std::int64_t lost_count() const override { return ring_.lost_count(); }
+  std::int64_t left_out_count() const override { return ring_.left_out_count(); }
+  std::string fault() const override { return fault_; }
 
  private:
+  const std::string name_;
+  const std::chrono::duration<double> silence_;
   Ring ring_;
   Events events_;
+  std::string fault_;
 };
 
 }  // namespace
 
-std::unique_ptr<Source> FromFile(const std::string& name, double rate_hz, std::chrono::seconds time) {
+std::unique_ptr<Source> FromFile(const std::string& name, double rate_hz,
+                                 std::chrono::duration<double> time) {
   return std::make_unique<FileSource>(ReadBlockFile(name), rate_hz, time);
 }
 
-std::unique_ptr<Source> FromRing(const std::string& name) {
-  return std::make_unique<RingSource>(name);
+std::unique_ptr<Source> FromRing(const std::string& name, std::chrono::duration<double> silence) {
+  return std::make_unique<RingSource>(name, silence);
 }
 
 }  // namespace kinegate::trigger

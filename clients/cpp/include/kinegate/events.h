@@ -54,6 +54,27 @@ struct VertexArrays {
   Column<double> covariance_m2;  // six an event; absent: not known
 };
 
+// VertexGroupArrays say which objects come from displaced vertices, the groups. Absent groups: all
+// objects come from the event vertex.
+struct VertexGroupArrays {
+  Column<std::int32_t> groups;   // of each object: 0 the event vertex, g the g-th group of its event
+  Column<std::int32_t> offsets;  // first group of each event and the total at the end
+  Column<double> x_m, y_m, z_m;  // of each group
+  Column<double> covariance_m2;  // six a group; absent: not known
+};
+
+// ClusterPositionArrays are where objects hit the calorimeter, NaN where they did not. Absent x:
+// not known.
+struct ClusterPositionArrays {
+  Column<double> x_m, y_m, z_m;
+};
+
+// PolarisationArrays are the polarisation of the beam photon of each event. Absent linear degree:
+// unpolarised.
+struct PolarisationArrays {
+  Column<double> linear_degree, plane_rad, circular_degree;
+};
+
 // EventArrays points at events as a caller holds them. The contract of EventBlock in
 // kinegate/v1/event.proto says what each column means; members that are absent are left out.
 struct EventArrays {
@@ -68,6 +89,9 @@ struct EventArrays {
   Column<double> covariance;            // six an object; absent: not known
   BeamArrays beam;
   VertexArrays vertex;
+  VertexGroupArrays vertex_group;
+  ClusterPositionArrays cluster_position;
+  PolarisationArrays polarisation;
 
   // event_count is the number of events.
   std::size_t event_count() const { return event_ids.size(); }

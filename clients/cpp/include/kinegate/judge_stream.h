@@ -38,7 +38,8 @@ struct JudgeOptions {
   std::chrono::milliseconds stuck{3'000};
   // Time after a break in which the stream must be open again, else it ends.
   std::chrono::milliseconds give_up{60'000};
-  // Called with the reason after each break, on a thread of the stream. May be empty.
+  // Called with the reason after each break, on a thread of the stream. May be empty. What it
+  // throws ends the stream, as with a handler.
   std::function<void(const Error&)> on_break;
 };
 
@@ -53,8 +54,13 @@ v1::SelectionSource Named(const std::string& name, const std::string& digest = "
 //
 // It keeps the rules of the stream: credit, heartbeats, order, leaving a server that drains, and
 // the policy for late events. The latency budget is that of the opening, latency_budget_s. Push,
-// TryPush, Finish and Close may be called on any thread, but on none that runs a handler:
-// handlers run one after the other on a thread of the stream, and hold up later verdicts alone.
+// TryPush, Finish and Close may be called on any thread, but on none that runs a handler or
+// on_break, and nor may the stream be destroyed there: it waits for the thread that it would run on.
+// Handlers run one after the other on a thread of the stream, and hold up later verdicts alone.
+//
+// What a throwing handler does: the stream ends with that error, of which Push and Finish and the
+// futures of blocks without a verdict then tell: an Error as it is, another exception in an Error
+// with its text. Verdicts that had come by then still go to their handlers.
 class JudgeStream {
  public:
   // Handler takes the verdicts on one block.

@@ -20,7 +20,9 @@ struct Entry {
   std::vector<double> observables;       // recorded values; NaN: not computed
 };
 
-// Verdicts is a verdict block. It answers for the events of one event block, in their order.
+// Verdicts is a verdict block. It answers for the events of one event block, in their order. An
+// index of an event, hypothesis or group that is out of range throws Error, which names it and how
+// many there are.
 class Verdicts {
  public:
   // Throws Error where the columns do not fit together.
