@@ -26,6 +26,7 @@ from kinegate.dalitz import Boundary, Dalitz
 from kinegate.decay import Decay
 from kinegate.detector import DetectorCheck, DetectorLike
 from kinegate.errors import (
+    ArgumentError,
     BlockRejected,
     Cancelled,
     DeadlineExceeded,
@@ -90,6 +91,7 @@ __all__ = [
     "POSITIVE",
     "Annihilation",
     "Answer",
+    "ArgumentError",
     "Assignment",
     "AsyncClient",
     "AsyncGenerationStream",

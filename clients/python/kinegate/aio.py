@@ -15,7 +15,7 @@ from typing import TYPE_CHECKING, Any, Concatenate, ParamSpec, Self, TypeVar, Un
 import grpc
 
 from kinegate import errors, questions
-from kinegate.bound import bound
+from kinegate.arguments import checked
 from kinegate.client import described, target
 from kinegate.events import Events
 from kinegate.generation import GenerationLike, sample
@@ -156,7 +156,7 @@ class AsyncClient:
 
     async def bound(self, source: GenerationLike, channel: int = 0, draws: int = 100_000) -> Bound:
         """Measure the weights of a channel, to choose its unweighting bound."""
-        return await self.ask(bound(await self.generation(source), channel, draws))
+        return await self.ask(questions.bound(await self.generation(source), channel, draws))
 
     async def judge_block(
         self, events: Events, selection: SelectionLike, *, entries: str = "accepted"
@@ -239,6 +239,7 @@ class AsyncJudgeStream:
     [1000, 1000, 1000]
     """
 
+    @checked
     def __init__(
         self,
         client: AsyncClient,
@@ -261,7 +262,7 @@ class AsyncJudgeStream:
         self._client._guard.check()  # noqa: SLF001  # of one house
         if self._pump is None:
             chosen = await self._client.selection(self._selection)
-            settings = Settings(chosen, **self._settings)
+            settings = checked(Settings)(chosen, **self._settings)
             self._pump = _Pump(self._client._target, settings)  # noqa: SLF001  # of one house
             self._pump.start(self._events)
             if settings.progress:

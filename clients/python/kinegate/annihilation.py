@@ -5,6 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from kinegate import units
+from kinegate.errors import ArgumentError
 from kinegate.photonprocess import PhotonProcess, asked, barns, column, optional
 from kinegate.tables import Table
 from kinegate.v1 import photon_pb2
@@ -118,7 +119,7 @@ def annihilation(
     2380
     """
     if (sqrt_s is None) == (kinetic is None):
-        raise ValueError("give sqrt_s or kinetic, one of them")
+        raise ArgumentError("give sqrt_s or kinetic, one of them")
     request = photon_pb2.PairAnnihilation(
         particle=particle,
         cosines=cosines,

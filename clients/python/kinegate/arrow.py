@@ -11,6 +11,7 @@ from typing import TYPE_CHECKING, Any, Final
 
 import numpy as np
 
+from kinegate.errors import ArgumentError
 from kinegate.frames import needed
 
 if TYPE_CHECKING:
@@ -29,7 +30,7 @@ _TRIANGLE: Final = 6
 
 def events_to_table(events: Events, parts: Mapping[str, type[Part]]) -> Any:
     """Make a table of one row an event; the columns are viewed, not copied."""
-    table = {"event_id": _column(events.ids, None)}
+    table = {"event_id": _column(events.event_ids, None)}
     of_objects: dict[str, NDArray[Any]] = {**events.values, "class": events.classes}
     for name in (*_MASKS, "covariance"):
         if (column := getattr(events, name)) is not None:
@@ -54,14 +55,14 @@ def events_from_table(
     marks = {k.decode(): v.decode() for k, v in (table.schema.metadata or {}).items()}
     chosen = marks.get("coordinates", "")
     if chosen not in coordinates:
-        raise ValueError(
+        raise ArgumentError(
             f"coordinates {chosen!r} of the table are none of {', '.join(coordinates)}"
         )
     whole = {name: _one_chunk(table[name]) for name in table.column_names}
     arguments: dict[str, Any] = {
         "classes": _numbers(whole["class"]),
         "offsets": _starts(whole["class"]),
-        "ids": _numbers(whole["event_id"]),
+        "event_ids": _numbers(whole["event_id"]),
         "run_number": int(marks.get("run_number", "0")),
         "extra": {
             n.removeprefix("extra_"): _numbers(c)

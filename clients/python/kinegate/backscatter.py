@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from kinegate import units
+from kinegate.errors import ArgumentError
 from kinegate.initial import beam_motion
 from kinegate.photonprocess import PhotonProcess, asked, barns, column
 from kinegate.tables import Table
@@ -146,7 +147,7 @@ def backscatter(  # noqa: PLR0913  # each is a choice of its own
     """
     motion = beam_motion("beam", beam, beam_kinetic, beam_momentum)
     if motion is None:
-        raise ValueError("give beam, beam_kinetic or beam_momentum, one of them")
+        raise ArgumentError("give beam, beam_kinetic or beam_momentum, one of them")
     request = photon_pb2.LaserBackscatter(
         particle=particle,
         beam=motion,

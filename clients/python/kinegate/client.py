@@ -12,7 +12,7 @@ from typing import TYPE_CHECKING, Any, Concatenate, ParamSpec, Self, TypeVar, Un
 import grpc
 
 from kinegate import errors, questions
-from kinegate.bound import bound
+from kinegate.arguments import checked
 from kinegate.generation import GenerationLike, sample
 from kinegate.generationstream import GenerationStream
 from kinegate.judge import JudgeSettings, Settings
@@ -212,7 +212,7 @@ class Client:
         kept with this bound  ...%
         kept with bound 1     ...%
         """
-        return self.ask(bound(self.generation(source), channel, draws))
+        return self.ask(questions.bound(self.generation(source), channel, draws))
 
     def judge_block(
         self, events: Events, selection: SelectionLike, *, entries: str = "accepted"
@@ -350,7 +350,7 @@ class Client:
         """
         self._guard.check()
         chosen = self.selection(selection)
-        stream = JudgeStream(self._target, events, Settings(chosen, **settings))
+        stream = JudgeStream(self._target, events, checked(Settings)(chosen, **settings))
         self._streams.add(stream)
         return stream
 
@@ -405,6 +405,7 @@ def connect(  # noqa: PLR0913  # each is a setting of its own
 
 def target(address: str | None, *, gate_address: str | None, **others: Any) -> Target:
     """Fill in the default addresses."""
+    make = checked(Target)
     if address is None:
-        return Target(DEFAULT_ADDRESS, gate_address or DEFAULT_GATE_ADDRESS, **others)
-    return Target(address, gate_address or address, **others)
+        return make(DEFAULT_ADDRESS, gate_address or DEFAULT_GATE_ADDRESS, **others)
+    return make(address, gate_address or address, **others)

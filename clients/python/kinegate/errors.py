@@ -22,6 +22,7 @@ if TYPE_CHECKING:
     from collections.abc import Iterable, Mapping, Sequence
 
 __all__ = [
+    "ArgumentError",
     "BlockRejected",
     "Cancelled",
     "DeadlineExceeded",
@@ -43,6 +44,9 @@ __all__ = [
 ]
 
 
+_LONGEST: Final = 60  # characters of a value in a sentence
+
+
 class KinegateError(Exception):
     """The base of every exception of this package.
 
@@ -55,12 +59,43 @@ class KinegateError(Exception):
 
 
 class UsageError(KinegateError):
-    """The package was used in a way that would hang or corrupt: forks and event loops.
+    """The package was used in a way that cannot work: forks, event loops, arguments.
 
     >>> kinegate.connect_async(server.address)
     Traceback (most recent call last):
     kinegate.errors.UsageError: connect_async needs a running event loop: ...
     """
+
+
+class ArgumentError(UsageError, ValueError):
+    """An argument is of the wrong kind, out of range or unknown; nothing was sent.
+
+    >>> try:
+    ...     client.reaction("gamma p -> p eta", beam=[1, 2])
+    ... except kinegate.ArgumentError as error:
+    ...     print(error.field, error.value)
+    ...     print(error)
+    beam [1, 2]
+    beam: [1, 2] is not a number in the base unit or a text with a unit, such as "1.2 GeV"
+    """
+
+    def __init__(self, message: str, field: str = "", value: Any = None) -> None:
+        super().__init__(f"{field}: {message}" if field else message)
+        self.message = message
+        """The value and what is allowed."""
+        self.field = field
+        """The argument at fault, such as "beam" or "energies[2]"; empty where it is several."""
+        self.value = value
+        """What was given."""
+
+    def __reduce__(self) -> tuple[object, ...]:
+        return type(self), (self.message, self.field, self.value)
+
+
+def shortened(value: object) -> str:
+    """Write a value into a sentence: long ones are cut."""
+    text = " ".join(repr(value).split())
+    return text if len(text) <= _LONGEST else f"{text[: _LONGEST - 3]}..."
 
 
 class StreamBroken(KinegateError):

@@ -12,6 +12,8 @@ from typing import TYPE_CHECKING, Any, Final, Self
 import numpy as np
 
 from kinegate import arrow, columns, csvfile, frames
+from kinegate.arguments import array
+from kinegate.errors import ArgumentError, UsageError
 from kinegate.parts import (
     BeamCandidates,
     ClusterPositions,
@@ -78,7 +80,7 @@ class Events:
     """First object of each event and the total at the end, shape (events + 1,)."""
     classes: NDArray[np.uint8]
     """Class of each object, shape (objects,)."""
-    ids: NDArray[np.int64]
+    event_ids: NDArray[np.int64]
     """Event ids, shape (events,)."""
     run_number: int = 0
     """Run number."""
@@ -107,7 +109,7 @@ class Events:
         *,
         classes: ArrayLike,
         offsets: ArrayLike | None = None,
-        ids: ArrayLike | None = None,
+        event_ids: ArrayLike | None = None,
         **others: Any,
     ) -> Self:
         """Make events from columns named as in :data:`COORDINATES`.
@@ -117,7 +119,7 @@ class Events:
                 one event where all events are alike.
             offsets: Shape (events + 1,); not needed for columns of shape (events, n),
                 which stand for n objects in every event.
-            ids: Event ids; 0, 1, ... by default.
+            event_ids: Event ids; 0, 1, ... by default.
             others: The columns of one coordinate set, and members of this class.
 
         >>> events = Events.of(momentum_gev=[[0.5, 0.7], [0.4, 0.8]],
@@ -128,38 +130,52 @@ class Events:
         (2, 'momentum_angles', array([0.7, 0.9]))
         """
         members = {f.name for f in fields(cls)}
-        given = {k: np.asarray(v, np.float64) for k, v in others.items() if k not in members}
+        given = {k: array(k, v, np.float64) for k, v in others.items() if k not in members}
         chosen = next((n for n, names in COORDINATES.items() if set(names) == set(given)), None)
         if chosen is None:
             known = "; ".join(f"{n}: {', '.join(names)}" for n, names in COORDINATES.items())
-            raise ValueError(f"columns {', '.join(given)} are no coordinate set; known: {known}")
+            raise ArgumentError(f"columns {', '.join(given)} are no coordinate set; known: {known}")
         shape = next(iter(given.values())).shape
+        for name, column in given.items():
+            if column.shape != shape:
+                raise ArgumentError(f"shape {column.shape}, {shape} is needed", name)
         starts = _offsets(offsets, shape)
-        kinds = np.broadcast_to(np.asarray(classes, np.uint8), shape).ravel()
+        kinds = array("classes", classes, np.uint8)
+        try:
+            kinds = np.broadcast_to(kinds, shape).ravel()
+        except ValueError:
+            message = (
+                f"shape {kinds.shape} is neither that of the columns, {shape}, nor of one event"
+            )
+            raise ArgumentError(message, "classes") from None
         events = cls(
             chosen,
             {name: given[name].ravel() for name in COORDINATES[chosen]},
             starts,
             kinds,
-            np.arange(len(starts) - 1) if ids is None else np.asarray(ids, np.int64),
+            np.arange(len(starts) - 1)
+            if event_ids is None
+            else array("event_ids", event_ids, np.int64),
             **{k: v for k, v in others.items() if k in members},
         )
         events.check()
         return events
 
     def check(self) -> None:
-        """Raise ValueError where the length of a column does not match."""
+        """Raise ArgumentError where the length of a column does not match."""
         events, objects = len(self), len(self.classes)
         if len(self.offsets) == 0 or self.offsets[0] != 0 or np.any(np.diff(self.offsets) < 0):
-            raise ValueError("offsets must begin with 0 and never fall")
+            raise ArgumentError("offsets must begin with 0 and never fall")
         if self.offsets[-1] != objects:
-            raise ValueError(f"offsets end at {self.offsets[-1]}, but there are {objects} objects")
+            raise ArgumentError(
+                f"offsets end at {self.offsets[-1]}, but there are {objects} objects"
+            )
         rows = dict.fromkeys((*self.values, *_MASKS, "covariance"), objects)
-        rows |= {"ids": events, **dict.fromkeys(self.extra, events)}
+        rows |= {"event_ids": events, **dict.fromkeys(self.extra, events)}
         for name, needed in rows.items():
             column = self._column(name)
             if column is not None and len(column) != needed:
-                raise ValueError(f"{name}: {len(column)} rows, {needed} are needed")
+                raise ArgumentError(f"{len(column)} rows, {needed} are needed", name)
         for name in _PARTS:
             if (part := getattr(self, name)) is not None:
                 part.check(name, events, objects)
@@ -188,10 +204,14 @@ class Events:
         return len(self.offsets) - 1
 
     def __getitem__(self, name: str) -> NDArray[np.float64]:
+        if name not in self.values:
+            raise ArgumentError(
+                f"no column {name!r}; there are {', '.join(self.values)}", "name", name
+            )
         return self.values[name]
 
     def __iter__(self) -> Iterator[Any]:
-        raise TypeError("iterate over events.blocks(), or over columns")
+        raise UsageError("iterate over events.blocks(), or over columns")
 
     def __repr__(self) -> str:
         parts = [n for n in (*_MASKS, "covariance", *_PARTS) if getattr(self, n) is not None]
@@ -219,7 +239,7 @@ class Events:
             values={name: column[objects] for name, column in self.values.items()},
             offsets=offsets,
             classes=self.classes[objects],
-            ids=self.ids[events],
+            event_ids=self.event_ids[events],
             extra={name: column[events] for name, column in self.extra.items()},
             **cut,
         )
@@ -238,7 +258,8 @@ class Events:
         [1300, 1300, 400]
         """
         if events_per_block < 1:
-            raise ValueError(f"events_per_block: {events_per_block} is not above 0")
+            message = f"{events_per_block} is not above 0"
+            raise ArgumentError(message, "events_per_block", events_per_block)
         start = 0
         while start < len(self):
             stop = min(start + events_per_block, len(self))
@@ -260,7 +281,7 @@ class Events:
         """
         block = event_pb2.EventBlock(
             sequence=sequence,
-            event_ids=columns.encode(self.ids, np.int64),
+            event_ids=columns.encode(self.event_ids, np.int64),
             run_number=self.run_number,
             object_offsets=columns.encode(self.offsets, np.int32),
             object_classes=columns.encode(self.classes, np.uint8),
@@ -289,7 +310,7 @@ class Events:
         """
         chosen = block.WhichOneof("coordinates")
         if chosen is None:
-            raise ValueError("the block has no coordinates")
+            raise ArgumentError("the block has no coordinates")
         coordinates = getattr(block, chosen)
         present = {f.name: value for f, value in block.ListFields()}
         optional: dict[str, Any] = {
@@ -320,7 +341,7 @@ class Events:
         3000
         """
         if len({s.coordinates for s in samples}) != 1:
-            raise ValueError("samples to join must be there, and in one coordinate set")
+            raise ArgumentError("samples to join must be there, and in one coordinate set")
         first = samples[0]
         optional: dict[str, Any] = {}
         for name in (*_MASKS, "covariance", *_PARTS):
@@ -329,13 +350,13 @@ class Events:
                 join = _PARTS[name].join if name in _PARTS else np.concatenate
                 optional[name] = join(found)
             elif any(f is not None for f in found):
-                raise ValueError(f"{name} is present in some samples only")
+                raise ArgumentError(f"{name} is present in some samples only")
         return cls(
             first.coordinates,
             {n: np.concatenate([s.values[n] for s in samples]) for n in first.values},
             join_offsets([s.offsets for s in samples]),
             np.concatenate([s.classes for s in samples]),
-            np.concatenate([s.ids for s in samples]),
+            np.concatenate([s.event_ids for s in samples]),
             first.run_number,
             extra={n: np.concatenate([s.extra[n] for s in samples]) for n in first.extra},
             **optional,
@@ -368,7 +389,7 @@ class Events:
 
 def _offsets(given: ArrayLike | None, shape: tuple[int, ...]) -> NDArray[np.int32]:
     if given is not None:
-        return np.asarray(given, np.int32)
+        return array("offsets", given, np.int32)
     if len(shape) != 2:  # noqa: PLR2004  # (events, objects of each)
-        raise ValueError("columns of shape (objects,) need offsets; of shape (events, n) none")
+        raise ArgumentError("columns of shape (objects,) need offsets; of shape (events, n) none")
     return np.arange(shape[0] + 1, dtype=np.int32) * np.int32(shape[1])

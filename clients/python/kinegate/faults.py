@@ -8,7 +8,8 @@ from typing import TYPE_CHECKING, Any, TypeVar
 
 from google.protobuf import json_format
 
-from kinegate.errors import FieldViolation, InvalidArgument
+from kinegate.arguments import text_of
+from kinegate.errors import ArgumentError, FieldViolation, InvalidArgument, shortened
 from kinegate.question import Answer
 from kinegate.tables import Table
 
@@ -71,11 +72,14 @@ def fill(request: Any, member: str, source: Any) -> None:
     elif isinstance(source, Mapping):
         target.SetInParent()
         parse(source, target)
-    elif isinstance(source, Path) or "\n" not in source:
+    elif isinstance(source, Path) or (isinstance(source, str) and "\n" not in source):
         # A text of one line is the name of a file: nothing with a file form fits on one.
-        request.yaml = Path(source).read_text(encoding="utf-8")
-    else:
+        request.yaml = text_of(member, source)
+    elif isinstance(source, str):
         request.yaml = source
+    else:
+        allowed = f"a YAML file or its text, a mapping, or a {type(target).__name__} message"
+        raise ArgumentError(f"{shortened(source)} is not {allowed}", member, source)
 
 
 def parse(source: Mapping[str, Any], target: Message) -> None:

@@ -7,6 +7,8 @@ from typing import TYPE_CHECKING, Any, Final
 
 import numpy as np
 
+from kinegate.errors import ArgumentError, UsageError
+
 if TYPE_CHECKING:
     from numpy.typing import NDArray
 
@@ -24,7 +26,7 @@ def needed(module: str) -> Any:
         return importlib.import_module(module)
     except ImportError:
         extra = _EXTRAS[module.partition(".")[0]]
-        raise ImportError(
+        raise UsageError(
             f"{module} is not installed; pip install 'kinegate[{extra}]' brings it"
         ) from None
 
@@ -33,9 +35,9 @@ def events_to_pandas(events: Events) -> Any:
     """Make a DataFrame of the objects."""
     pandas = needed("pandas")
     counts = np.diff(events.offsets)
-    ids = np.repeat(events.ids, counts)
-    within = np.arange(len(ids)) - np.repeat(events.offsets[:-1], counts)
-    index = pandas.MultiIndex.from_arrays([ids, within], names=["event_id", "object"])
+    event_ids = np.repeat(events.event_ids, counts)
+    within = np.arange(len(event_ids)) - np.repeat(events.offsets[:-1], counts)
+    index = pandas.MultiIndex.from_arrays([event_ids, within], names=["event_id", "object"])
     return pandas.DataFrame({**events.values, "class": events.classes}, index=index)
 
 
@@ -45,17 +47,17 @@ def verdicts_to_pandas(verdicts: Verdicts) -> Any:
     table: dict[str, Any] = {"status": verdicts.status_names, "gate": verdicts.gate}
     table |= {f"accepted {name}": column for name, column in verdicts.accepted.items()}
     table |= {f"best {name}": verdicts.best_names(name) for name in verdicts.best}
-    return pandas.DataFrame(table, index=pandas.Index(verdicts.ids, name="event_id"))
+    return pandas.DataFrame(table, index=pandas.Index(verdicts.event_ids, name="event_id"))
 
 
 def entries_table(verdicts: Verdicts) -> dict[str, NDArray[Any]]:
     """Make columns of the entries, observables by label; NaN where one is not recorded."""
     entries = verdicts.entries
     if entries is None:
-        raise ValueError("the verdicts carry no entries; judge with entries='accepted' or 'all'")
+        raise ArgumentError("the verdicts carry no entries; judge with entries='accepted' or 'all'")
     names = np.array([h.name for h in verdicts.hypotheses], object)
     table: dict[str, NDArray[Any]] = {
-        "event_id": verdicts.ids[entries.events],
+        "event_id": verdicts.event_ids[entries.events],
         "hypothesis": names[entries.hypothesis],
         "beam_row": entries.beam_row,
         "weight": entries.weight,

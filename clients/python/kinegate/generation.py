@@ -10,7 +10,8 @@ from typing import TYPE_CHECKING, Any, Final, Self
 import numpy as np
 
 from kinegate import columns
-from kinegate.errors import InvalidArgument
+from kinegate.arguments import checked
+from kinegate.errors import ArgumentError, InvalidArgument, shortened
 from kinegate.events import Events
 from kinegate.faults import Check, fill, parse
 from kinegate.parts import join_offsets
@@ -46,7 +47,7 @@ class Truth:
     (100, '0.4 GeV')
     """
 
-    ids: NDArray[np.int64]
+    event_ids: NDArray[np.int64]
     """Number of each event, shape (events,)."""
     channels: NDArray[np.int16]
     """Position of each event's channel in the generation, shape (events,)."""
@@ -90,7 +91,7 @@ class Truth:
     @classmethod
     def concatenate(cls, parts: Sequence[Truth]) -> Self:
         """Join the truth of blocks that follow one another."""
-        names = ("ids", "channels", "weights", "particle_numbers", "masses", "parents")
+        names = ("event_ids", "channels", "weights", "particle_numbers", "masses", "parents")
         joined: dict[str, Any] = {
             name: np.concatenate([getattr(p, name) for p in parts])
             for name in (*names, "object_particles")
@@ -151,7 +152,7 @@ class Generated:
     def concatenate(cls, parts: Sequence[Generated]) -> Self:
         """Join blocks that follow one another."""
         if not parts:
-            raise ValueError("no blocks to join")
+            raise ArgumentError("no blocks to join")
         events = [p.events for p in parts if p.events is not None]
         truth = [p.truth for p in parts if p.truth is not None]
         return cls(
@@ -219,10 +220,12 @@ def generation_message(source: GenerationLike) -> generation_pb2.Generation:
     elif isinstance(source, Mapping):
         parse(source, generation)
     else:
-        raise TypeError("a generation from a file is checked first: client.generation(file)")
+        allowed = "a mapping or a message; a file is checked first: client.generation(file)"
+        raise ArgumentError(f"{shortened(source)} is not {allowed}", "generation", source)
     return generation
 
 
+@checked
 def sample(
     source: GenerationLike,
     count: int,
@@ -232,8 +235,9 @@ def sample(
     events_per_block: int,
 ) -> Sample:
     """Make the state of a stream of simulated events."""
-    if count < 0 or first < 0:
-        raise ValueError("count and first must be at least 0")
+    for name, value in (("count", count), ("first", first)):
+        if value < 0:
+            raise ArgumentError(f"{value} is not at least 0", name, value)
     return Sample(
         generation_pb2.GenerateEventsRequest(
             generation=generation_message(source),

@@ -5,6 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING, TypedDict
 
 from kinegate import units
+from kinegate.errors import ArgumentError, shortened
 from kinegate.v1 import kinematics_pb2
 
 if TYPE_CHECKING:
@@ -54,16 +55,15 @@ def initial_state(particles: str | Sequence[str], beams: Beams) -> kinematics_pb
     its wavelength.
     """
     if unknown := set(beams) - set(Beams.__annotations__):
-        raise TypeError(
-            f"unknown argument {min(unknown)!r}; known: {', '.join(Beams.__annotations__)}"
-        )
+        known = ", ".join(Beams.__annotations__)
+        raise ArgumentError(f"unknown argument {min(unknown)!r}; known: {known}", min(unknown))
     names = particles.partition("->")[0].split() if isinstance(particles, str) else list(particles)
     photon = [name == "gamma" for name in [*names, "", ""]]
     beam1 = _named_motion(beams, "beam", photon=photon[0])
     beam2 = _named_motion(beams, "beam2", photon=photon[1])
     ways = [bool(beam1 or beam2 or "angle" in beams), "sqrt_s" in beams, "four_momenta" in beams]
     if sum(ways) > 1:
-        raise ValueError("beams, sqrt_s and four_momenta say the same thing; give one of them")
+        raise ArgumentError("beams, sqrt_s and four_momenta say the same thing; give one of them")
     if "sqrt_s" in beams:
         return kinematics_pb2.InitialState(sqrt_s_gev=units.energy(beams["sqrt_s"]))
     if "four_momenta" in beams:
@@ -73,11 +73,11 @@ def initial_state(particles: str | Sequence[str], beams: Beams) -> kinematics_pb
         )
     if beam1 is None:
         if beam2 or "angle" in beams:
-            raise ValueError("beam2 and angle need beam")
+            raise ArgumentError("beam2 and angle need beam")
         return kinematics_pb2.InitialState()
     if beam2 is None:
         if "angle" in beams:
-            raise ValueError("angle needs beam2: a target at rest has no direction")
+            raise ArgumentError("angle needs beam2: a target at rest has no direction")
         return kinematics_pb2.InitialState(beam_on_target=kinematics_pb2.BeamOnTarget(beam=beam1))
     two = kinematics_pb2.TwoBeams(beam1=beam1, beam2=beam2)
     if "angle" in beams:
@@ -95,7 +95,9 @@ def beam_motion(
 ) -> kinematics_pb2.BeamMotion | None:
     """Make the message of one motion from the one quantity that is given, if any."""
     if sum(q is not None for q in (total, kinetic, momentum)) > 1:
-        raise ValueError(f"{name}, {name}_kinetic and {name}_momentum say the same thing; give one")
+        raise ArgumentError(
+            f"{name}, {name}_kinetic and {name}_momentum say the same thing; give one"
+        )
     if total is not None:
         read = units.photon_energy if photon else units.energy
         return kinematics_pb2.BeamMotion(total_energy_gev=read(total))
@@ -118,5 +120,8 @@ def _named_motion(beams: Beams, name: str, *, photon: bool) -> kinematics_pb2.Be
 
 
 def _four_momentum(components: Sequence[float]) -> kinematics_pb2.FourMomentum:
+    if len(components) != 4:  # noqa: PLR2004  # (E, px, py, pz)
+        message = f"{shortened(components)} is not (E, px, py, pz)"
+        raise ArgumentError(message, "four_momenta", components)
     energy, px, py, pz = components
     return kinematics_pb2.FourMomentum(energy_gev=energy, px_gev=px, py_gev=py, pz_gev=pz)

@@ -14,7 +14,7 @@ from typing import TYPE_CHECKING, Final, TypedDict
 
 import grpc
 
-from kinegate.errors import ServerError, StreamBroken
+from kinegate.errors import ArgumentError, ServerError, StreamBroken, shortened
 from kinegate.selection import Hypothesis, Selection, entry_detail, outline
 from kinegate.v1 import info_pb2, selection_pb2
 from kinegate.verdicts import Verdicts
@@ -84,19 +84,31 @@ class Settings:
     def __post_init__(self) -> None:
         entry_detail(self.entries)
         if self.late not in LATE:
-            raise ValueError(f"late: {self.late!r} is none of {', '.join(map(repr, LATE))}")
+            raise ArgumentError(
+                f"{self.late!r} is none of {', '.join(map(repr, LATE))}", "late", self.late
+            )
         if not 1 <= self.events_per_block <= 4096:  # noqa: PLR2004  # the contract's limit
-            raise ValueError(f"events_per_block: {self.events_per_block} is not within [1, 4096]")
+            raise ArgumentError(
+                f"{self.events_per_block} is not within [1, 4096]",
+                "events_per_block",
+                self.events_per_block,
+            )
         if self.latency_budget is not None and not self.latency_budget > 0:
-            raise ValueError(f"latency_budget: {self.latency_budget} is not above 0")
+            raise ArgumentError(
+                f"{self.latency_budget} is not above 0", "latency_budget", self.latency_budget
+            )
         if self.first_sequence < 0:
-            raise ValueError(f"first_sequence: {self.first_sequence} is below 0")
+            raise ArgumentError(
+                f"{self.first_sequence} is below 0", "first_sequence", self.first_sequence
+            )
 
     def blocks(self, events: Events | Iterable[Events]) -> Iterator[Events]:
         """Cut a sample into blocks; blocks of an iterable stay as they are unless too large."""
         from kinegate.events import Events  # noqa: PLC0415  # verdicts and events stay apart
 
         for part in [events] if isinstance(events, Events) else events:
+            if not isinstance(part, Events):
+                raise ArgumentError(f"{shortened(part)} is not kinegate.Events", "events", part)
             yield from part.blocks(self.events_per_block, self.candidates_per_block)
 
     @property
@@ -272,7 +284,7 @@ class Protocol:
             verdict,
             self.hypotheses,
             self.settings.selection.groups,
-            events.ids,
+            events.event_ids,
             accept_late=self.settings.late == "accept",
         )
         self.late_count += int(verdicts.late.sum())

@@ -5,6 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from kinegate import units
+from kinegate.errors import ArgumentError
 from kinegate.question import Answer, Question
 from kinegate.tables import Table
 from kinegate.v1 import motion_pb2
@@ -156,7 +157,7 @@ def motion(  # noqa: PLR0913  # one argument for each customary form
     }
     values = {name: value for name, value in given.items() if value is not None}
     if len(values) > 1:
-        raise ValueError(f"{' and '.join(values)} say the same thing; give one")
+        raise ArgumentError(f"{' and '.join(values)} say the same thing; give one")
     for name, value in values.items():
         setattr(request, name, value)
     return Question("ReactionService", "ConvertMotion", request, lambda r: Motion(r[0]))

@@ -6,6 +6,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any, Unpack
 
 from kinegate.channel import state_name
+from kinegate.errors import ArgumentError
 from kinegate.initial import Beams, initial_state
 from kinegate.question import Answer, Question
 from kinegate.tables import Table
@@ -168,7 +169,7 @@ def _law(name: str) -> channels_pb2.ConservationLaw:
         names = ", ".join(
             k.removeprefix("CONSERVATION_LAW_").lower().replace("_", " ") for k in known
         )
-        raise ValueError(f"ignored_laws: {name!r} is none of {names}")
+        raise ArgumentError(f"{name!r} is none of {names}", "ignored_laws", name)
     law: channels_pb2.ConservationLaw = getattr(channels_pb2, key)
     return law
 

@@ -5,6 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from kinegate import units
+from kinegate.errors import ArgumentError
 from kinegate.photonprocess import (
     ByHelicity,
     PhotonProcess,
@@ -163,11 +164,11 @@ def pair_creation(  # noqa: PLR0913  # each is a choice of its own
     """
     ways = [photon is not None or photon2 is not None, sqrt_s is not None, excess is not None]
     if sum(ways) != 1:
-        raise ValueError("give photon and photon2, or sqrt_s, or excess, one of them")
+        raise ArgumentError("give photon and photon2, or sqrt_s, or excess, one of them")
     if (photon is None) != (photon2 is None):
-        raise ValueError("photon and photon2 belong together: a pair needs two photons")
+        raise ArgumentError("photon and photon2 belong together: a pair needs two photons")
     if angle is not None and photon is None:
-        raise ValueError("angle needs photon and photon2")
+        raise ArgumentError("angle needs photon and photon2")
     request = photon_pb2.PairCreation(
         particle=particle,
         cosines=cosines,
@@ -230,7 +231,7 @@ def field_pair(
     1.0225...
     """
     if (target is None) == (target_mass is None):
-        raise ValueError("give target or target_mass, one of them")
+        raise ArgumentError("give target or target_mass, one of them")
     request = photon_pb2.FieldPairCreation(particle=particle)
     if target is not None:
         request.target_particle = target

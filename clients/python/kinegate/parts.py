@@ -11,6 +11,7 @@ from typing import TYPE_CHECKING, Any, Final, Self
 import numpy as np
 
 from kinegate import columns
+from kinegate.errors import ArgumentError
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -57,11 +58,11 @@ class Part:
         raise NotImplementedError
 
     def check(self, name: str, events: int, objects: int) -> None:
-        """Raise ValueError where the length of a column does not match."""
+        """Raise ArgumentError where the length of a column does not match."""
         for member, rows in self.row_counts(events, objects).items():
             column = getattr(self, member)
             if column is not None and len(column) != rows:
-                raise ValueError(f"{name}.{member}: {len(column)} rows, {rows} are needed")
+                raise ArgumentError(f"{len(column)} rows, {rows} are needed", f"{name}.{member}")
 
     def _rows(self, ranges: dict[str, slice]) -> dict[str, Any]:
         """Cut each column to its range."""
@@ -257,5 +258,5 @@ def _join(parts: Sequence[Part], name: str) -> Any:
     if missing == len(found):
         return None
     if missing:
-        raise ValueError(f"{name} is present in some samples only")
+        raise ArgumentError(f"{name} is present in some samples only")
     return join_offsets(found) if name == "offsets" else np.concatenate(found)

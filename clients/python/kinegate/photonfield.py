@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from kinegate import units
+from kinegate.errors import ArgumentError
 from kinegate.question import Answer, Question
 from kinegate.tables import Table
 from kinegate.v1 import photonfield_pb2
@@ -125,7 +126,7 @@ def photon_field(
         distance_m=units.length(distance),
     )
     if (temperature is None) == (power_law is None):
-        raise ValueError("give temperature or power_law, one of them")
+        raise ArgumentError("give temperature or power_law, one of them")
     if temperature is not None:
         request.black_body.temperature_k = temperature
         request.black_body.redshift = redshift

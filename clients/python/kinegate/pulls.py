@@ -7,6 +7,8 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
+from kinegate.arguments import checked
+from kinegate.errors import ArgumentError
 from kinegate.tables import Table
 
 if TYPE_CHECKING:
@@ -74,11 +76,13 @@ def of_best(hypothesis: str, rows: NDArray[np.intp], explanations: Sequence[Expl
     return Pulls(hypothesis, rows, columns)
 
 
+@checked
 def accepted_rows(
     accepted: Sequence[Mapping[str, NDArray[np.bool_]]], hypothesis: str, most: int
 ) -> NDArray[np.intp]:
     """Return the rows of the first events that a hypothesis accepts."""
     if accepted and hypothesis not in accepted[0]:
-        raise KeyError(f"no hypothesis {hypothesis!r}; known: {', '.join(accepted[0])}")
+        message = f"no hypothesis {hypothesis!r}; known: {', '.join(accepted[0])}"
+        raise ArgumentError(message, "hypothesis", hypothesis)
     parts = [block[hypothesis] for block in accepted] or [np.zeros(0, np.bool_)]
     return np.flatnonzero(np.concatenate(parts))[:most]

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING, Unpack
+from typing import TYPE_CHECKING, Final, Unpack
 
 from kinegate.channel import (
     Limits,
@@ -13,6 +13,7 @@ from kinegate.channel import (
     product_limits,
     state_name,
 )
+from kinegate.errors import ArgumentError
 from kinegate.initial import Beams, initial_state
 from kinegate.question import Answer, Question
 from kinegate.tables import Table
@@ -24,7 +25,14 @@ if TYPE_CHECKING:
 
     from kinegate.v1 import kinematics_pb2
 
+
 __all__ = ["Reaction", "reaction"]
+
+
+_INITIAL: Final = {
+    "beam": reaction_pb2.INITIAL_PARTICLE_BEAM,
+    "target": reaction_pb2.INITIAL_PARTICLE_TARGET,
+}
 
 
 class Reaction(Answer[reaction_pb2.DescribeReactionResponse]):
@@ -190,10 +198,10 @@ def reaction(
     if state.WhichOneof("kind"):
         request.initial_state.CopyFrom(state)
     for initial, products in momentum_transfers:
-        request.momentum_transfers.add(
-            initial=reaction_pb2.InitialParticle.Value(f"INITIAL_PARTICLE_{initial.upper()}"),
-            products=products,
-        )
+        if initial not in _INITIAL:
+            message = f"{initial!r} is neither of {' and '.join(map(repr, _INITIAL))}"
+            raise ArgumentError(message, "momentum_transfers", initial)
+        request.momentum_transfers.add(initial=_INITIAL[initial], products=products)
     return Question("ReactionService", "DescribeReaction", request, lambda r: Reaction(r[0]))
 
 

@@ -7,7 +7,8 @@ from dataclasses import dataclass, field
 from pathlib import Path
 from typing import TYPE_CHECKING, Any, Final
 
-from kinegate.errors import SelectionFaulty
+from kinegate.arguments import checked
+from kinegate.errors import ArgumentError, SelectionFaulty
 from kinegate.explanation import Explanation
 from kinegate.faults import Check, fill
 from kinegate.question import Question
@@ -73,6 +74,7 @@ class Selection:
         reference = selection_pb2.SelectionReference(name=name, selection_digest=digest)
         return cls(selection_pb2.SelectionSource(named=reference), digest)
 
+    @checked
     def judging(self, events: Events, entries: str) -> Question[Verdicts]:
         """Make the question that judges one block."""
         request = selection_pb2.JudgeBlockRequest(
@@ -82,15 +84,17 @@ class Selection:
         def read(replies: Sequence[Any]) -> Verdicts:
             verdict = replies[0].verdict
             return Verdicts.from_message(
-                verdict, list(self.hypotheses.values()), self.groups, events.ids
+                verdict, list(self.hypotheses.values()), self.groups, events.event_ids
             )
 
         return Question("SelectionService", "JudgeBlock", request, read)
 
+    @checked
     def explaining(self, events: Events, event: int, most: int) -> Question[Explanation]:
         """Make the question that lays the verdict on one event open."""
         if not -len(events) <= event < len(events):
-            raise IndexError(f"event {event} of {len(events)}")
+            message = f"there is no event {event} of {len(events)}"
+            raise ArgumentError(message, "event", event)
         row = event % len(events)
         request = selection_pb2.ExplainVerdictRequest(
             selection=self.source,
@@ -170,6 +174,7 @@ def outline(messages: Sequence[selection_pb2.HypothesisOutline]) -> dict[str, Hy
 def entry_detail(entries: str) -> selection_pb2.EntryDetail:
     """Read which entries are wanted."""
     if entries not in _ENTRIES:
-        raise ValueError(f"entries: {entries!r} is none of {', '.join(map(repr, _ENTRIES))}")
+        known = ", ".join(map(repr, _ENTRIES))
+        raise ArgumentError(f"{entries!r} is none of {known}", "entries", entries)
     detail: selection_pb2.EntryDetail = getattr(selection_pb2, f"ENTRY_DETAIL_{entries.upper()}")
     return detail

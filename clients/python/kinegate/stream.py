@@ -12,6 +12,7 @@ from typing import TYPE_CHECKING, Self
 import grpc
 
 from kinegate import errors
+from kinegate.arguments import checked
 from kinegate.events import Events
 from kinegate.judge import Protocol, Settings, pause
 from kinegate.progress import Bar
@@ -44,6 +45,7 @@ class JudgeStream:
     ([1500, 1500], 0)
     """
 
+    @checked
     def __init__(
         self, target: Target, events: Events | Iterable[Events], settings: Settings
     ) -> None:

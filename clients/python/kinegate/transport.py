@@ -12,7 +12,8 @@ from typing import TYPE_CHECKING, Any, Final
 
 import grpc
 
-from kinegate.errors import UsageError
+from kinegate.arguments import checked
+from kinegate.errors import ArgumentError, UsageError
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -114,13 +115,14 @@ class Target:
 
     def __post_init__(self) -> None:
         if (self.certificate_file is None) != (self.key_file is None):
-            raise ValueError("a client certificate needs both certificate_file and key_file")
+            raise ArgumentError("a client certificate needs both certificate_file and key_file")
         files = (self.ca_file, self.certificate_file, self.server_name)
         if not self.tls and any(f is not None for f in files):
-            raise ValueError("ca_file, certificate_file, key_file and server_name need tls=True")
+            raise ArgumentError("ca_file, certificate_file, key_file and server_name need tls=True")
         if not self.timeout > 0:
-            raise ValueError(f"timeout: {self.timeout!r} is not above 0")
+            raise ArgumentError(f"{self.timeout!r} is not above 0", "timeout", self.timeout)
 
+    @checked
     def with_timeout(self, seconds: float) -> Target:
         """Return this target with another deadline."""
         return replace(self, timeout=seconds)

@@ -7,10 +7,11 @@ from typing import TYPE_CHECKING, Any, Final, Unpack
 import numpy as np
 
 from kinegate.channel import is_open, product_limits, state_name
+from kinegate.errors import ArgumentError
 from kinegate.initial import Beams, initial_state
 from kinegate.question import Answer, Question
 from kinegate.tables import Table
-from kinegate.units import angle, energy, format_angle, format_energy
+from kinegate.units import angle, energy, format_angle, format_energy, plain
 from kinegate.v1 import twobody_pb2
 
 if TYPE_CHECKING:
@@ -27,12 +28,12 @@ __all__ = ["TwoBody", "two_body"]
 _VARIABLES: Final[dict[str, tuple[str, Callable[[Quantity], float]]]] = {
     "angle": ("laboratory_angles_rad", angle),
     "rest_angle": ("centre_of_mass_angles_rad", angle),
-    "rest_cosine": ("centre_of_mass_cosines", float),
+    "rest_cosine": ("centre_of_mass_cosines", plain),
     "energy": ("laboratory_total_energies_gev", energy),
     "kinetic": ("laboratory_kinetic_energies_gev", energy),
     "momentum": ("laboratory_momenta_gev", energy),
-    "t": ("t_values_gev2", float),
-    "t_prime": ("t_prime_values_gev2", float),
+    "t": ("t_values_gev2", plain),
+    "t_prime": ("t_prime_values_gev2", plain),
 }
 
 
@@ -130,9 +131,10 @@ def two_body(
     request.initial_state.CopyFrom(initial_state(text, beams))
     for name, values in (given or {}).items():
         if name not in _VARIABLES:
-            raise ValueError(f"unknown variable {name!r}; known: {', '.join(_VARIABLES)}")
+            known = ", ".join(_VARIABLES)
+            raise ArgumentError(f"unknown variable {name!r}; known: {known}", "given", name)
         field, read = _VARIABLES[name]
-        getattr(request, field).extend(map(read, values))
+        getattr(request, field).extend([read(v) for v in values])
     return Question("ReactionService", "SolveTwoBody", request, lambda r: TwoBody(r[0]))
 
 
@@ -144,6 +146,9 @@ def _member(solution: twobody_pb2.TwoBodySolution, name: str, product: int, bran
         owner = owner.products[product]
     field = owner.DESCRIPTOR.fields_by_name.get(name)
     if field is None:
-        raise ValueError(f"unknown member {name!r}")
+        known = ", ".join(
+            [*solution.branches[branch].DESCRIPTOR.fields_by_name, *owner.DESCRIPTOR.fields_by_name]
+        )
+        raise ArgumentError(f"unknown member {name!r}; known: {known}", "name", name)
     absent = field.has_presence and not owner.HasField(name)
     return float("nan") if absent else float(getattr(owner, name))

@@ -19,6 +19,8 @@ import math
 import re
 from typing import Final
 
+from kinegate.errors import ArgumentError, shortened
+
 __all__ = [
     "CENTIMETRE",
     "DEGREE",
@@ -47,6 +49,7 @@ __all__ = [
     "format_time",
     "length",
     "photon_energy",
+    "plain",
     "time",
 ]
 
@@ -123,7 +126,7 @@ def energy(value: Quantity) -> float:
     0.938
     >>> energy("20 deg")
     Traceback (most recent call last):
-    ValueError: '20 deg' is a quantity of angle; energy is needed, in eV, keV, ...
+    kinegate.errors.ArgumentError: '20 deg' is a quantity of angle; energy is needed, ...
     """
     return _read(value, "energy")
 
@@ -162,38 +165,52 @@ def photon_energy(value: Quantity) -> float:
     4.1356...e-15
     """
     if not isinstance(value, str):
-        return float(value)
+        return plain(value)
     number, dimension = _parse(value, "energy")
     if dimension == "length":
         if number <= 0:
-            raise ValueError(f"{value!r}: a wavelength must be above 0")
+            raise ArgumentError(f"{value!r} is not above 0, as a wavelength must be", value=value)
         return _HC_GEV_M / number
     if dimension == "frequency":
         return _H_GEV_S * number
     if dimension != "energy":
-        raise ValueError(
+        raise ArgumentError(
             f"{value!r} is a quantity of {dimension}; "
-            "an energy, wavelength or frequency of a photon is needed"
+            "an energy, wavelength or frequency of a photon is needed",
+            value=value,
         )
     return number
 
 
 def _read(value: Quantity, dimension: str) -> float:
     if not isinstance(value, str):
-        return float(value)
+        return plain(value)
     number, found = _parse(value, dimension)
     if found != dimension:
         names = ", ".join(_UNITS[dimension])
-        raise ValueError(f"{value!r} is a quantity of {found}; {dimension} is needed, in {names}")
+        message = f"{value!r} is a quantity of {found}; {dimension} is needed, in {names}"
+        raise ArgumentError(message, value=value)
     return number
+
+
+def plain(value: Quantity) -> float:
+    """Read a number without a unit.
+
+    >>> plain(0.5)
+    0.5
+    """
+    try:
+        return float(value)
+    except (TypeError, ValueError, OverflowError):
+        message = f"{shortened(value)} is not a number"
+        raise ArgumentError(message, value=value) from None
 
 
 def _parse(text: str, wanted: str) -> tuple[float, str]:
     parts = _FORM.fullmatch(text.strip())
     if parts is None:
-        raise ValueError(
-            f'{text!r} is not a number with a unit; write for example "{_EXAMPLES[wanted]}"'
-        )
+        message = f'{text!r} is not a number with a unit; write for example "{_EXAMPLES[wanted]}"'
+        raise ArgumentError(message, value=text)
     number, exponent, name = parts.groups()
     for dimension, units in _UNITS.items():
         if name in units:
@@ -202,10 +219,11 @@ def _parse(text: str, wanted: str) -> tuple[float, str]:
             if name == "deg":
                 value *= DEGREE
             if math.isinf(value):
-                raise ValueError(f"{text!r} is out of range")
+                raise ArgumentError(f"{text!r} is out of range", value=text)
             return value, dimension
     names = ", ".join(_UNITS[wanted])
-    raise ValueError(f"unknown unit {name!r}; units of {wanted} are {names}")
+    message = f"unknown unit {name!r} in {text!r}; units of {wanted} are {names}"
+    raise ArgumentError(message, value=text)
 
 
 def format_energy(value: float, digits: int = 7) -> str:

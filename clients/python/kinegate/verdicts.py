@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING, Any, Final, Self
 import numpy as np
 
 from kinegate import columns, frames
-from kinegate.errors import BlockRejected, FieldViolation
+from kinegate.errors import ArgumentError, BlockRejected, FieldViolation
 from kinegate.parts import join_offsets
 from kinegate.tables import Table
 from kinegate.v1 import fit_pb2, verdict_pb2
@@ -158,7 +158,7 @@ class Verdicts:
 
     hypotheses: list[Hypothesis]
     """The hypotheses of the selection, in its order."""
-    ids: NDArray[np.int64]
+    event_ids: NDArray[np.int64]
     """Event ids."""
     digest: str
     """Digest of the selection that judged, in hexadecimal."""
@@ -181,7 +181,7 @@ class Verdicts:
         message: verdict_pb2.VerdictBlock,
         hypotheses: list[Hypothesis],
         groups: Sequence[str],
-        ids: NDArray[np.int64],
+        event_ids: NDArray[np.int64],
         *,
         accept_late: bool = True,
     ) -> Self:
@@ -208,7 +208,7 @@ class Verdicts:
         labels = [*groups, *(f"group {i}" for i in range(len(groups), len(message.groups)))]
         return cls(
             hypotheses,
-            ids,
+            event_ids,
             message.selection_digest,
             message.sequence,
             statuses,
@@ -234,13 +234,13 @@ class Verdicts:
         2316
         """
         if not parts:
-            raise ValueError("no verdicts to join")
+            raise ArgumentError("no verdicts to join")
         first = parts[0]
         entries = [p.entries for p in parts]
         found = [e for e in entries if e is not None]
         return cls(
             first.hypotheses,
-            np.concatenate([p.ids for p in parts]),
+            np.concatenate([p.event_ids for p in parts]),
             parts[-1].digest,
             first.sequence,
             np.concatenate([p.statuses for p in parts]),
@@ -267,6 +267,9 @@ class Verdicts:
     def best_names(self, group: str) -> NDArray[np.object_]:
         """Return the name of the best hypothesis of a group; empty where none accepts."""
         names = np.array([*(h.name for h in self.hypotheses), ""], object)
+        if group not in self.best:
+            known = ", ".join(self.best) or "none"
+            raise ArgumentError(f"no group {group!r}; known: {known}", "group", group)
         found: NDArray[np.object_] = names[self.best[group]]
         return found
 
@@ -283,7 +286,8 @@ class Verdicts:
         labels = self.hypotheses[index].observables
         if label not in labels:
             known = ", ".join(labels) or "none"
-            raise KeyError(f"{hypothesis!r} records no observable {label!r}; recorded: {known}")
+            message = f"{hypothesis!r} records no observable {label!r}; recorded: {known}"
+            raise ArgumentError(message, "label", label)
         rows = np.flatnonzero(entries.hypothesis == index)
         places = entries.observable_offsets[rows] + labels.index(label)
         spreads = None if entries.uncertainties is None else entries.uncertainties[places]
@@ -302,7 +306,7 @@ class Verdicts:
             or entries.probability is None
             or entries.iterations is None
         ):
-            raise KeyError(f"{hypothesis!r} has no fit")
+            raise ArgumentError(f"{hypothesis!r} has no fit", "hypothesis", hypothesis)
         rows = np.flatnonzero(entries.hypothesis == index)
         statuses = entries.fit_statuses[rows]
         return Fits(
@@ -319,10 +323,11 @@ class Verdicts:
 
     def _entries_of(self, hypothesis: str) -> tuple[Entries, int]:
         if self.entries is None:
-            raise ValueError("no entries came along; judge with entries='accepted' or 'all'")
+            raise ArgumentError("no entries came along; judge with entries='accepted' or 'all'")
         names = [h.name for h in self.hypotheses]
         if hypothesis not in names:
-            raise KeyError(f"no hypothesis {hypothesis!r}; known: {', '.join(names)}")
+            message = f"no hypothesis {hypothesis!r}; known: {', '.join(names)}"
+            raise ArgumentError(message, "hypothesis", hypothesis)
         return self.entries, names.index(hypothesis)
 
     def to_pandas(self) -> Any:

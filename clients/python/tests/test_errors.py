@@ -51,7 +51,7 @@ def test_arguments_are_checked_before_a_call(client: kinegate.Client) -> None:
         client.reaction("gamma p -> p eta", beam2=1.0)
     with pytest.raises(ValueError, match="at rest has no direction"):
         client.reaction("gamma p -> p eta", beam=1.0, angle="10 deg")
-    with pytest.raises(TypeError, match="unknown argument 'beams'"):
+    with pytest.raises(kinegate.ArgumentError, match="unknown argument 'beams'"):
         client.reaction("gamma p -> p eta", beams=1.0)  # type: ignore[call-arg]
     with pytest.raises(ValueError, match="need tls=True"):
         kinegate.connect("127.0.0.1:1", ca_file="ca.pem")

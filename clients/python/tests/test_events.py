@@ -46,7 +46,7 @@ def sample(coordinates: str = "momentum_mass", events: int = 50, *, full: bool =
     return Events.of(
         classes=rng.integers(1, 5, n),
         offsets=offsets,
-        ids=np.arange(events) + 10**12,
+        event_ids=np.arange(events) + 10**12,
         run_number=42,
         extra={"true_mass": rng.random(events)},
         **optional,
@@ -80,7 +80,7 @@ def test_message_there_and_back(coordinates: str) -> None:
 def test_columns_of_a_message_are_views() -> None:
     block = sample().to_message()
     events = Events.from_message(block)
-    for column in (events["px_gev"], events.offsets, events.classes, events.ids):
+    for column in (events["px_gev"], events.offsets, events.classes, events.event_ids):
         assert not column.flags.owndata
         assert not column.flags.writeable
 
@@ -117,7 +117,10 @@ def test_fixed_multiplicity_needs_no_offsets() -> None:
         ({"px_gev": [[1.0]]}, "no coordinate set"),
         ({"classes": [1], "offsets": [0, 2]}, "offsets end at 2"),
         ({"classes": [1], "offsets": [1, 1]}, "begin with 0"),
-        ({"classes": [1], "offsets": [0, 1], "ids": [1, 2]}, "ids: 2 rows, 1 are needed"),
+        (
+            {"classes": [1], "offsets": [0, 1], "event_ids": [1, 2]},
+            "event_ids: 2 rows, 1 are needed",
+        ),
         ({"classes": [1], "offsets": [0, 1], "species_mask": np.zeros(3)}, "species_mask: 3 rows"),
         (
             {"classes": [1], "offsets": [0, 1], "vertex": kinegate.Vertices(*np.zeros((3, 4)))},
@@ -184,6 +187,6 @@ def test_blocks_keep_to_a_number_of_beam_candidates() -> None:
     )
     blocks = list(events.blocks(4, candidates_per_block=8))
     assert [len(b) for b in blocks] == [3, 1, 1, 2]
-    assert np.concatenate([b.ids for b in blocks]).tolist() == list(range(7))
+    assert np.concatenate([b.event_ids for b in blocks]).tolist() == list(range(7))
     energies = [b.beam.energy_gev for b in blocks if b.beam is not None]
     assert (np.concatenate(energies) == column).all()

@@ -83,14 +83,14 @@ class History:
         self.longest_gap = max(self.longest_gap, now - self._last)
         self._last = now
         self.sequences.append(verdict.sequence)
-        self.ids.append(verdict.ids)
+        self.ids.append(verdict.event_ids)
         self.accepted.append(verdict.accepted["Z"])
 
     def check(self, blocks: list[Events], truth: np.ndarray[Any, np.dtype[np.bool_]]) -> None:
         """Every block was answered once, in order, with the verdict it always gets."""
         assert self.sequences == list(range(len(blocks)))
         for mine, block in zip(self.ids, blocks, strict=True):
-            assert (mine == block.ids).all()
+            assert (mine == block.event_ids).all()
         assert (np.concatenate(self.accepted) == np.tile(truth, len(blocks) // 30)).all()
 
 

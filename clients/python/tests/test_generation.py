@@ -49,10 +49,10 @@ def test_truth_conserves_momentum(client: kinegate.Client) -> None:
     for part in client.generate(GENERATION, 2000):
         truth = part.truth
         assert truth is not None
-        assert truth.ids.tolist() == list(
-            range(part.first_event, part.first_event + len(truth.ids))
+        assert truth.event_ids.tolist() == list(
+            range(part.first_event, part.first_event + len(truth.event_ids))
         )
-        count += len(truth.ids)
+        count += len(truth.event_ids)
         first = truth.particle_offsets[:-1]
         # Rows: p, eta, gamma, gamma.
         assert truth.particle_numbers[first].tolist() == [2212] * len(first)
@@ -121,8 +121,8 @@ def test_broken_stream_goes_on(client: kinegate.Client) -> None:
             parts.append(part.truth)
         thread.join()
     assert stream.reconnects >= 1
-    ids = np.concatenate([t.ids for t in parts if t])
-    assert (ids == np.arange(40_000)).all()
+    event_ids = np.concatenate([t.event_ids for t in parts if t])
+    assert (event_ids == np.arange(40_000)).all()
     energy = np.concatenate([t.momentum["energy_gev"] for t in parts if t])
     assert (energy == np.concatenate([t.momentum["energy_gev"] for t in whole])).all()
 
@@ -173,7 +173,7 @@ def test_frozen_servers_are_left_for_another(client: kinegate.Client, kind: str)
     found = kinegate.Generated.concatenate(blocks).truth
     assert found is not None
     assert truth is not None
-    assert (found.ids == np.arange(40_000)).all()
+    assert (found.event_ids == np.arange(40_000)).all()
     assert (found.momentum["energy_gev"] == truth.momentum["energy_gev"]).all()
     assert 1 <= reconnects <= 4
     # A silence of 3 s, then maybe one of 6 s with the server that stays frozen.

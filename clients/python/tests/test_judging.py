@@ -38,7 +38,7 @@ def test_measured_dimuon_masses(
     printed = dimuons.extra["M"][mass.events]
     assert np.abs(mass.values / printed - 1).max() < 1e-4
     assert verdicts.accepted["Z"].sum() == 2316
-    assert (verdicts.ids == dimuons.ids).all()
+    assert (verdicts.event_ids == dimuons.event_ids).all()
     assert verdicts.digest == dimuon.digest
 
 
@@ -118,9 +118,9 @@ def test_what_is_not_there_is_named(
     client: kinegate.Client, dimuons: Events, dimuon: kinegate.Selection
 ) -> None:
     few = dimuons.cut(0, 5)
-    with pytest.raises(KeyError, match="known: dimuon, Z"):
+    with pytest.raises(kinegate.ArgumentError, match="known: dimuon, Z"):
         client.judge_block(few, dimuon).observable("zeta", "M")
-    with pytest.raises(KeyError, match="recorded: M"):
+    with pytest.raises(kinegate.ArgumentError, match="recorded: M"):
         client.judge_block(few, dimuon).observable("Z", "m")
     with pytest.raises(ValueError, match="no entries"):
         client.judge_block(few, dimuon, entries="none").observable("Z", "M")

@@ -44,7 +44,7 @@ def test_photon_by_wavelength() -> None:
     ("text", "complaint"),
     [
         ("12", "not a number with a unit"),
-        ("12 parsec", "unknown unit 'parsec'; units of energy are eV"),
+        ("12 parsec", "unknown unit 'parsec' in '12 parsec'; units of energy are eV"),
         ("12 deg", "a quantity of angle; energy is needed"),
         ("1e999 GeV", "out of range"),
         ("", "not a number"),
