@@ -10,6 +10,7 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
+from kinegate.errors import ArgumentError
 from kinegate.frames import needed
 from kinegate.pulls import Pulls
 from kinegate.units import DEGREE, format_energy
@@ -17,9 +18,10 @@ from kinegate.units import DEGREE, format_energy
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
-    from numpy.typing import ArrayLike
+    from numpy.typing import ArrayLike, NDArray
 
     from kinegate.backscatter import Backscatter
+    from kinegate.channel import Limits
     from kinegate.compton import Compton
     from kinegate.dalitz import Dalitz
     from kinegate.detector import DetectorCheck
@@ -47,14 +49,19 @@ def ladder(channels: OpenChannels, most: int = 20, axes: Any = None) -> Any:
 
     Args:
         channels: The answer of `client.open_channels`.
-        most: Largest number of rungs, the highest ones of many.
+        most: Largest number of open rungs: of many, the highest ones, whose thresholds are
+            nearest to the beam. How many lower ones are left out stands below them.
         axes: Where to draw.
 
     >>> kinegate.plot.ladder(client.open_channels("gamma p", beam="1.2 GeV")).get_xlabel()
     'beam energy at threshold (GeV)'
     """
+    if most < 1:
+        raise ArgumentError(f"{most} is not at least 1", "most", most)
     axes = _axes(axes, height=0.28 * min(most, len(channels)) + 1.2)
-    rungs = [c for c in channels if c.threshold is not None][-most:]
+    every = [c for c in channels if c.threshold is not None]
+    rungs = every[-most:]
+    lower = len(every) - len(rungs)
     following = channels.next_to_open
     shown = [*rungs, *([following] if following and following.threshold is not None else [])]
     for height, channel in enumerate(shown):
@@ -73,8 +80,12 @@ def ladder(channels: OpenChannels, most: int = 20, axes: Any = None) -> Any:
     if beam is not None:
         axes.axvline(beam, color="tab:red", lw=1.5)
         axes.text(beam, len(shown) - 0.4, f" beam {format_energy(beam, 4)}", color="tab:red")
-    axes.set_yticks(range(len(shown)), [c.name for c in shown])
-    axes.set_ylim(-0.7, len(shown) + 0.4)
+    names = [c.name for c in shown]
+    if lower:
+        axes.set_yticks(range(-1, len(shown)), [_lower_ones(lower), *names])
+    else:
+        axes.set_yticks(range(len(shown)), names)
+    axes.set_ylim(-1.7 if lower else -0.7, len(shown) + 0.4)
     axes.set_xlim(right=_right(shown))
     axes.set_xlabel("beam energy at threshold (GeV)")
     axes.spines[["top", "right"]].set_visible(False)
@@ -84,21 +95,22 @@ def ladder(channels: OpenChannels, most: int = 20, axes: Any = None) -> Any:
 def products(reaction: Reaction, axes: Any = None) -> Any:
     """Draw where each product can go: laboratory momentum against angle.
 
+    Of two products that move along +z together each keeps to a curve; else the ranges of
+    momentum and angle are drawn, which not every pair of values within need reach.
+
     >>> kinegate.plot.products(client.reaction("gamma p -> p eta", beam="1.2 GeV")).get_ylabel()
     'momentum (GeV)'
     """
     axes = _axes(axes)
-    patches = needed("matplotlib.patches")
+    boost = _two_body_boost(reaction)
     for number, (name, limits) in enumerate(reaction.products.items()):
-        color = f"C{number}"
-        low, high = limits.angle.low / DEGREE, limits.angle.high / DEGREE
-        span = (high - low, limits.momentum.high - limits.momentum.low)
-        axes.add_patch(
-            patches.Rectangle(
-                (low, limits.momentum.low), *span, color=color, alpha=0.25, label=name
-            )
-        )
+        if boost is not None:
+            angles, momenta = _curve(limits, *boost)
+            axes.plot(angles / DEGREE, momenta, color=f"C{number}", label=name)
+        else:
+            _ranges(axes, limits, f"C{number}", f"{name}, ranges")
     axes.autoscale_view()
+    axes.set_ylim(bottom=0)
     axes.set_xlabel("angle in the laboratory (deg)")
     axes.set_ylabel("momentum (GeV)")
     axes.legend(frameon=False)
@@ -284,6 +296,41 @@ def _axes(axes: Any, height: float = 4.0) -> Any:
         return axes
     _, axes = needed("matplotlib.pyplot").subplots(figsize=(6.4, height), layout="constrained")
     return axes
+
+
+def _lower_ones(count: int) -> str:
+    return f"and {count} lower {'one' if count == 1 else 'ones'}"
+
+
+def _two_body_boost(reaction: Reaction) -> tuple[float, float] | None:
+    """Return beta gamma and gamma of two products along z; None for any other reaction."""
+    limits = list(reaction.products.values())
+    total = reaction.message.centre_of_mass.total
+    across = math.hypot(total.px_gev, total.py_gev)
+    fixed = all(math.isclose(x.rest_momentum.low, x.rest_momentum.high) for x in limits)
+    sqrt_s = reaction.sqrt_s
+    if len(limits) != 2 or not fixed or not sqrt_s or across > 1e-9 * total.energy_gev:  # noqa: PLR2004
+        return None
+    return total.pz_gev / sqrt_s, total.energy_gev / sqrt_s
+
+
+def _curve(
+    limits: Limits, beta_gamma: float, gamma: float
+) -> tuple[NDArray[np.float64], NDArray[np.float64]]:
+    """Return laboratory angles and momenta for every angle in the centre of mass."""
+    angle = np.linspace(0, np.pi, 721)
+    along = gamma * limits.rest_momentum.high * np.cos(angle)
+    along += beta_gamma * limits.rest_energy.high
+    across = limits.rest_momentum.high * np.sin(angle)
+    return np.arctan2(across, along), np.hypot(across, along)
+
+
+def _ranges(axes: Any, limits: Limits, color: str, label: str) -> None:
+    low, high = limits.angle.low / DEGREE, limits.angle.high / DEGREE
+    corner = (low, limits.momentum.low)
+    span = (high - low, limits.momentum.high - limits.momentum.low)
+    rectangle = needed("matplotlib.patches").Rectangle
+    axes.add_patch(rectangle(corner, *span, color=color, alpha=0.25, label=label))
 
 
 def _right(channels: Sequence[Any]) -> float:
