@@ -28,7 +28,7 @@ if TYPE_CHECKING:
 
     from numpy.typing import ArrayLike, NDArray
 
-__all__ = ["array", "checked", "text_of"]
+__all__ = ["array", "checked", "integer", "text_of"]
 
 P = ParamSpec("P")
 R = TypeVar("R")
@@ -96,6 +96,21 @@ def array(field: str, values: ArrayLike, kind: type[T]) -> NDArray[T]:
         message = f"{shortened(values)} is not a column of {kind.__name__}: {why}"
         raise ArgumentError(message, field, values)
     return cast("NDArray[T]", column)
+
+
+def integer(field: str, value: Any, lowest: int | None = None) -> int:
+    """Read an integer, which may be that of numpy.
+
+    >>> integer("events_per_block", 0, lowest=1)
+    Traceback (most recent call last):
+    kinegate.errors.ArgumentError: events_per_block: 0 is not above 0
+    """
+    if not _is_integer(value):
+        raise ArgumentError(f"{shortened(value)} is not an integer", field, value)
+    number = operator.index(value)
+    if lowest is not None and number < lowest:
+        raise ArgumentError(f"{number} is not above {lowest - 1}", field, value)
+    return number
 
 
 def text_of(field: str, path: str | PathLike[str]) -> str:
@@ -186,7 +201,7 @@ def _fit(field: str, value: Any, kind: ast.expr) -> Any:
                 raise ArgumentError(f"{shortened(value)} is not {len(items)} values", field, value)
             pairs = enumerate(zip(parts, items, strict=True))
             return tuple(_fit(f"{field}[{i}]", part, item) for i, (part, item) in pairs)
-        case ast.Subscript(value=ast.Name(id="dict"), slice=ast.Tuple(elts=[_, item])):
+        case ast.Subscript(value=ast.Name(id="dict" | "Mapping"), slice=ast.Tuple(elts=[_, item])):
             if not isinstance(value, Mapping):
                 raise ArgumentError(f"{shortened(value)} is not a mapping", field, value)
             return {k: _fit(f"{field}[{k!r}]", v, item) for k, v in value.items()}

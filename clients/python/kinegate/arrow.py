@@ -11,7 +11,7 @@ from typing import TYPE_CHECKING, Any, Final
 
 import numpy as np
 
-from kinegate.errors import ArgumentError
+from kinegate.errors import ArgumentError, shortened
 from kinegate.frames import needed
 
 if TYPE_CHECKING:
@@ -52,6 +52,8 @@ def events_from_table(
     table: Any, coordinates: Mapping[str, tuple[str, ...]], parts: Mapping[str, type[Part]]
 ) -> dict[str, Any]:
     """Return the arguments that make events; columns of one chunk are viewed, not copied."""
+    if not hasattr(table, "schema"):
+        raise ArgumentError(f"{shortened(table)} is not an Arrow table", "table", table)
     marks = {k.decode(): v.decode() for k, v in (table.schema.metadata or {}).items()}
     chosen = marks.get("coordinates", "")
     if chosen not in coordinates:

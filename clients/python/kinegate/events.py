@@ -12,8 +12,8 @@ from typing import TYPE_CHECKING, Any, Final, Self
 import numpy as np
 
 from kinegate import arrow, columns, csvfile, frames
-from kinegate.arguments import array
-from kinegate.errors import ArgumentError, UsageError
+from kinegate.arguments import array, integer
+from kinegate.errors import ArgumentError, UsageError, shortened
 from kinegate.parts import (
     BeamCandidates,
     ClusterPositions,
@@ -52,6 +52,7 @@ COORDINATES: Final[Mapping[str, tuple[str, ...]]] = {
 }
 """The coordinate sets with their columns, such as momentum_mass: px_gev, py_gev, ..."""
 
+_TRIANGLE: Final = 6  # elements of a symmetric matrix of three parameters
 _MASKS: Final = ("measured_mask", "species_mask")
 _PARTS: Final[Mapping[str, type[Part]]] = {
     "beam": BeamCandidates,
@@ -156,7 +157,7 @@ class Events:
             np.arange(len(starts) - 1)
             if event_ids is None
             else array("event_ids", event_ids, np.int64),
-            **{k: v for k, v in others.items() if k in members},
+            **{k: _member(k, v) for k, v in others.items() if k in members},
         )
         events.check()
         return events
@@ -224,6 +225,7 @@ class Events:
         >>> Events.read_csv("../../testdata/open/dimuon_2011A.csv").cut(5, 8)
         <3 events, 6 objects in momentum_mass, with species_mask>
         """
+        start, stop = integer("start", start), integer("stop", stop)
         start, stop, _ = slice(start, stop).indices(len(self))
         events = slice(start, max(start, stop))
         offsets, objects = cut_offsets(self.offsets, events)
@@ -257,9 +259,7 @@ class Events:
         >>> [len(block) for block in sample.blocks(1300)]
         [1300, 1300, 400]
         """
-        if events_per_block < 1:
-            message = f"{events_per_block} is not above 0"
-            raise ArgumentError(message, "events_per_block", events_per_block)
+        integer("events_per_block", events_per_block, lowest=1)
         start = 0
         while start < len(self):
             stop = min(start + events_per_block, len(self))
@@ -340,6 +340,11 @@ class Events:
         >>> len(Events.concatenate(list(sample.blocks(700))))
         3000
         """
+        given: Sequence[Any] = samples
+        for sample in given:
+            if not isinstance(sample, Events):
+                message = f"{shortened(sample)} is not kinegate.Events"
+                raise ArgumentError(message, "samples", sample)
         if len({s.coordinates for s in samples}) != 1:
             raise ArgumentError("samples to join must be there, and in one coordinate set")
         first = samples[0]
@@ -385,6 +390,26 @@ class Events:
     def from_arrow(cls, table: Any) -> Self:
         """Make events from an Arrow table as :meth:`to_arrow` makes it."""
         return cls.of(**arrow.events_from_table(table, COORDINATES, _PARTS))
+
+
+def _member(name: str, value: Any) -> Any:
+    """Read what is no coordinate: optional columns, parts, and what travels along."""
+    if value is None:
+        return None
+    if name in _MASKS:
+        return array(name, value, np.uint8)
+    if name == "covariance":
+        column = array(name, value, np.float64)
+        if column.shape[1:] != (_TRIANGLE,):
+            message = f"shape {column.shape}, (objects, {_TRIANGLE}) is needed"
+            raise ArgumentError(message, name)
+        return column
+    if name == "run_number":
+        return integer(name, value)
+    kind = _PARTS.get(name, dict if name == "extra" else object)
+    if not isinstance(value, kind):
+        raise ArgumentError(f"{shortened(value)} is not {kind.__name__}", name, value)
+    return value
 
 
 def _offsets(given: ArrayLike | None, shape: tuple[int, ...]) -> NDArray[np.int32]:

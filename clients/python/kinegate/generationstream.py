@@ -16,6 +16,7 @@ from typing import TYPE_CHECKING, Any, Final
 import grpc
 
 from kinegate import errors
+from kinegate.arguments import checked
 from kinegate.generation import Generated
 from kinegate.judge import DEAD
 from kinegate.progress import Bar
@@ -38,6 +39,7 @@ _TICK: Final = 0.25
 class _Stream:
     """What both streams share."""
 
+    @checked
     def __init__(
         self,
         sample: Sample,

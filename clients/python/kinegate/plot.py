@@ -10,6 +10,7 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
+from kinegate.arguments import array
 from kinegate.errors import ArgumentError
 from kinegate.frames import needed
 from kinegate.pulls import Pulls
@@ -189,8 +190,8 @@ def histogram(
     'entries'
     """
     axes = _axes(axes)
-    x = np.asarray(values, np.float64)
-    w = np.ones(len(x)) if weights is None else np.asarray(weights, np.float64)
+    x = array("values", values, np.float64)
+    w = np.ones(len(x)) if weights is None else array("weights", weights, np.float64)
     counts, edges = np.histogram(x, bins, weights=w)
     spread = np.sqrt(np.histogram(x, edges, weights=w * w)[0])
     (line,) = (axes.stairs(counts, edges, label=label or None),)

@@ -8,7 +8,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Any, Final
 
 from kinegate.arguments import checked
-from kinegate.errors import ArgumentError, SelectionFaulty
+from kinegate.errors import ArgumentError, SelectionFaulty, shortened
 from kinegate.explanation import Explanation
 from kinegate.faults import Check, fill
 from kinegate.question import Question
@@ -71,6 +71,9 @@ class Selection:
         >>> kinegate.Selection.named("night-shift").source.named.name
         'night-shift'
         """
+        for field_name, value in (("name", name), ("digest", digest)):
+            if not isinstance(value, str):
+                raise ArgumentError(f"{shortened(value)} is not a text", field_name, value)
         reference = selection_pb2.SelectionReference(name=name, selection_digest=digest)
         return cls(selection_pb2.SelectionSource(named=reference), digest)
 

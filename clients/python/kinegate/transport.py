@@ -7,12 +7,11 @@ import json
 import os
 import weakref
 from dataclasses import dataclass, field, replace
-from pathlib import Path
 from typing import TYPE_CHECKING, Any, Final
 
 import grpc
 
-from kinegate.arguments import checked
+from kinegate.arguments import checked, text_of
 from kinegate.errors import ArgumentError, UsageError
 
 if TYPE_CHECKING:
@@ -149,14 +148,14 @@ class Target:
         if not self.tls:
             return None
         return grpc.ssl_channel_credentials(
-            root_certificates=_read(self.ca_file),
-            private_key=_read(self.key_file),
-            certificate_chain=_read(self.certificate_file),
+            root_certificates=_read("ca_file", self.ca_file),
+            private_key=_read("key_file", self.key_file),
+            certificate_chain=_read("certificate_file", self.certificate_file),
         )
 
 
-def _read(path: str | None) -> bytes | None:
-    return None if path is None else Path(path).read_bytes()
+def _read(field: str, path: str | None) -> bytes | None:
+    return None if path is None else text_of(field, path).encode()
 
 
 class ProcessGuard:

@@ -6,8 +6,9 @@ from typing import TYPE_CHECKING, Any, Final, Unpack
 
 import numpy as np
 
+from kinegate.arguments import integer
 from kinegate.channel import is_open, product_limits, state_name
-from kinegate.errors import ArgumentError
+from kinegate.errors import ArgumentError, shortened
 from kinegate.initial import Beams, initial_state
 from kinegate.question import Answer, Question
 from kinegate.tables import Table
@@ -79,6 +80,9 @@ class TwoBody(Answer[twobody_pb2.SolveTwoBodyResponse]):
         >>> solution.column("laboratory_momentum_gev", product=1)
         array([1.208..., 0.967...])
         """
+        branch = integer("branch", branch, lowest=0)
+        if product not in (0, 1):
+            raise ArgumentError(f"{shortened(product)} is neither 0 nor 1", "product", product)
         return np.array([_member(s, name, product, branch) for s in self.message.solutions])
 
     def tables(self) -> list[Table]:

@@ -130,6 +130,28 @@ MISTAKES: dict[str, tuple[Act, str, str]] = {
         "no column 'pt'",
     ),
     "no file of events": (lambda _: kinegate.Events.read_csv("no.csv"), "path", "'no.csv'"),
+    "mask of text": (
+        lambda _: events_of(**COLUMNS, classes=[1], measured_mask="x"),
+        "measured_mask",
+        "'x' is not a column of uint8",
+    ),
+    "covariance too small": (
+        lambda _: events_of(**COLUMNS, classes=[1], covariance=[[1, 2]]),
+        "covariance",
+        "(objects, 6) is needed",
+    ),
+    "part that is none": (
+        lambda _: events_of(**COLUMNS, classes=[1], beam=5),
+        "beam",
+        "5 is not BeamCandidates",
+    ),
+    "samples that are none": (lambda _: kinegate.Events.concatenate([1]), "samples", "1 is not"),  # type: ignore[list-item]
+    "text for a patience": (lambda c: c.generate(DECAY, 1, patience="x"), "patience", "'x' is not"),
+    "no file of authorities": (
+        lambda _: kinegate.connect("a:1", tls=True, ca_file="no.pem"),
+        "ca_file",
+        "cannot read 'no.pem'",
+    ),
     "text for a timeout": (lambda c: c.with_timeout("5 s"), "seconds", "'5 s' is not a number"),
 }
 
