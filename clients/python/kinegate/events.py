@@ -131,6 +131,11 @@ class Events:
         (2, 'momentum_angles', array([0.7, 0.9]))
         """
         members = {f.name for f in fields(cls)}
+        for name in others:
+            if name not in members and not any(name in names for names in COORDINATES.values()):
+                known = ", ".join(sorted(members - {"coordinates", "values"}))
+                message = f"unknown; beside the columns of a coordinate set there are {known}"
+                raise ArgumentError(message, name)
         given = {k: array(k, v, np.float64) for k, v in others.items() if k not in members}
         chosen = next((n for n, names in COORDINATES.items() if set(names) == set(given)), None)
         if chosen is None:

@@ -130,6 +130,11 @@ MISTAKES: dict[str, tuple[Act, str, str]] = {
         "no column 'pt'",
     ),
     "no file of events": (lambda _: kinegate.Events.read_csv("no.csv"), "path", "'no.csv'"),
+    "unknown member": (
+        lambda _: events_of(**COLUMNS, classes=[1], ids=[4]),
+        "ids",
+        "there are beam, classes, cluster_position, covariance, event_ids, ",
+    ),
     "mask of text": (
         lambda _: events_of(**COLUMNS, classes=[1], measured_mask="x"),
         "measured_mask",
