@@ -106,7 +106,7 @@ func sizeSettings() []Setting {
 			func(o *Options) Value { return count(&o.GateStreams, 1<<20) }},
 		{"general_streams", "512", "Most concurrent calls on the general listener; more are refused.",
 			func(o *Options) Value { return count(&o.GeneralStreams, 1<<20) }},
-		{"caller_calls", "100", "Most open calls of one caller, told by its certificate and address, on a unix socket by its user, on the general listener; more are refused.",
+		{"caller_calls", "100", "Most open calls of one caller, told by its certificate and address or, on a unix socket, by its user; more are refused.",
 			func(o *Options) Value { return count(&o.CallerCalls, 1<<16) }},
 		{"work_slots", "0", "Work done at a time on the general listener, in processors kept busy; 0 takes one fewer than there are, and at least one.",
 			func(o *Options) Value { return countFromZero(&o.WorkSlots, 1<<12) }},
