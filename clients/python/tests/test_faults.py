@@ -228,7 +228,7 @@ def test_rolling_restart(case: Case, kind: str) -> None:
                 three[turn % 3].start()
 
         history = case.run(kind, addresses(three), rounds=30, pause=0.005, during=during)
-    assert history.reconnects >= 3
+    assert history.reconnects >= 1  # how many depends on where the stream stands
     assert history.longest_gap < 3
 
 
