@@ -2,6 +2,7 @@
 // in order, with the bits of a run that was never interrupted.
 #pragma once
 
+#include <atomic>
 #include <chrono>
 #include <functional>
 #include <mutex>
@@ -22,7 +23,9 @@ class History {
   // Run is a run of the sample's events through a stream, in blocks.
   struct Run {
     std::size_t per_block = 100;
-    int rounds = 1;                           // how often the sample is sent
+    int rounds = 1;  // how often the sample is sent
+    // Sends the sample over and over until this is set, and once more after it.
+    const std::atomic<bool>* over = nullptr;
     std::chrono::milliseconds pause{0};       // between blocks
     std::function<void(std::size_t)> before;  // called before each block with its number
     JudgeOptions options;
