@@ -87,9 +87,9 @@ History::Outcome History::Check(const std::string& address, const v1::JudgeOpen&
     });
   };
   try {
-    bool last = false;
-    for (int round = 0; !last; ++round) {
-      last = run.over != nullptr ? run.over->load() : round + 1 == run.rounds;
+    bool done = false;
+    for (int round = 0; !done; ++round) {
+      done = run.over != nullptr ? run.over->load() : round + 1 == run.rounds;
       for (std::size_t first = 0; first < sample_.ids.size(); first += run.per_block) {
         if (run.before) run.before(pushed);
         push(first, std::min(run.per_block, sample_.ids.size() - first));
