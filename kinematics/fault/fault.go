@@ -66,10 +66,21 @@ func (e *Error) At(line, column int) *Error {
 	return e
 }
 
+// namesLaw reports whether Field is a law and no path.
+func (e *Error) namesLaw() bool { return e.Kind == Forbidden && e.Law == "" }
+
+// Path is the path of the field at fault; empty for a law that is broken at no field.
+func (e *Error) Path() string {
+	if e.namesLaw() {
+		return ""
+	}
+	return e.Field
+}
+
 // Move returns a copy of e at another path. A Forbidden fault keeps its law.
 func (e *Error) Move(field string) *Error {
 	c := *e
-	if e.Kind == Forbidden && e.Law == "" {
+	if e.namesLaw() {
 		c.Law = e.Field
 	}
 	c.Field = field
@@ -107,7 +118,7 @@ func (e *Error) Error() string {
 // complaint makes.
 func (e *Error) subject() string {
 	switch {
-	case e.Kind == Forbidden && e.Law == "":
+	case e.namesLaw():
 		return ""
 	case e.Kind == Forbidden:
 		return e.Field

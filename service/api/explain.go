@@ -2,7 +2,6 @@ package api
 
 import (
 	"context"
-	"math"
 	"strconv"
 
 	"google.golang.org/protobuf/proto"
@@ -93,7 +92,7 @@ func explanationMessage(e *selection.Explanation, c *compiledSelection) *kinegat
 func assignmentMessage(a *selection.AssignmentExplanation) *kinegatev1.AssignmentExplanation {
 	m := &kinegatev1.AssignmentExplanation{
 		BeamRow: int32(a.BeamRow), Weight: a.Weight, //nolint:gosec // at most MaxCandidates
-		Complete: a.Complete, Passed: a.Passed, Best: a.Best, RankDistance: orAbsent(a.RankDistance),
+		Complete: a.Complete, Passed: a.Passed, Best: a.Best, RankDistance: finite(a.RankDistance),
 	}
 	for _, object := range a.Objects {
 		m.Objects = append(m.Objects, int32(object)) //nolint:gosec // at most MaxObjectsPerEvent
@@ -101,8 +100,8 @@ func assignmentMessage(a *selection.AssignmentExplanation) *kinegatev1.Assignmen
 	for k := range a.Windows {
 		w := &a.Windows[k]
 		m.Windows = append(m.Windows, &kinegatev1.WindowExplanation{
-			Path: w.Path, Label: w.Label, Unit: w.Unit, Value: w.Value, Uncertainty: orAbsent(w.Uncertainty),
-			AboveMin: orAbsent(w.AboveMin), BelowMax: orAbsent(w.BelowMax), Inside: w.Inside,
+			Path: w.Path, Label: w.Label, Unit: w.Unit, Value: w.Value, Uncertainty: finite(w.Uncertainty),
+			AboveMin: finite(w.AboveMin), BelowMax: finite(w.BelowMax), Inside: w.Inside,
 		})
 	}
 	if a.Fit != nil {
@@ -114,8 +113,8 @@ func assignmentMessage(a *selection.AssignmentExplanation) *kinegatev1.Assignmen
 func fitMessage(f *selection.FitExplanation) *kinegatev1.FitExplanation {
 	m := &kinegatev1.FitExplanation{
 		Status: kinegatev1.FitStatus(f.Result.Status), ChiSquare: f.Result.ChiSquare,
-		Probability: orAbsent(f.Result.Probability), IterationCount: int32(f.Result.Iterations), //nolint:gosec // at most some hundred
-		VertexZM: orAbsent(f.VertexZ), VertexZSigmaM: orAbsent(f.VertexSigma),
+		Probability: finite(f.Result.Probability), IterationCount: int32(f.Result.Iterations), //nolint:gosec // at most some hundred
+		VertexZM: finite(f.VertexZ), VertexZSigmaM: finite(f.VertexSigma),
 	}
 	for k := range f.Constraints {
 		c := &f.Constraints[k]
@@ -134,21 +133,13 @@ func fitMessage(f *selection.FitExplanation) *kinegatev1.FitExplanation {
 		for a := range p.Parameters {
 			q := &p.Parameters[a]
 			x.Parameters = append(x.Parameters, &kinegatev1.FittedParameter{
-				Name: q.Name, Unit: q.Unit, Measured: orAbsent(q.Measured), Uncertainty: orAbsent(q.Uncertainty),
-				Fitted: q.Fitted, Pull: orAbsent(q.Pull),
+				Name: q.Name, Unit: q.Unit, Measured: finite(q.Measured), Uncertainty: finite(q.Uncertainty),
+				Fitted: q.Fitted, Pull: finite(q.Pull),
 			})
 		}
 		m.Particles = append(m.Particles, x)
 	}
 	return m
-}
-
-// orAbsent is an optional number, absent for NaN.
-func orAbsent(x float64) *float64 {
-	if math.IsNaN(x) {
-		return nil
-	}
-	return &x
 }
 
 func fourMessage(p momentum.Four) *kinegatev1.FourMomentum {

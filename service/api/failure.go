@@ -78,11 +78,7 @@ func Because(reason Reason, err error) *Failure {
 func In(prefix string, err error) *Failure {
 	_, explained := errors.AsType[*Failure](err)
 	if e, ok := errors.AsType[*fault.Error](err); ok && !explained && e.Column == 0 {
-		field := e.Field
-		if e.Kind == fault.Forbidden && e.Law == "" {
-			field = "" // it is the law
-		}
-		return Explain(e.Move(join(prefix, field)))
+		return Explain(e.Move(join(prefix, e.Path())))
 	}
 	f := *Explain(err)
 	f.Violations = append([]Violation(nil), f.Violations...)

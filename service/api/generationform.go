@@ -97,11 +97,7 @@ func (f *former) name(field, name string) {
 // found keeps the faults of the core under a path.
 func (f *former) found(err error, path func(field string) string) {
 	for _, e := range faultsOf(err) {
-		field := e.Field
-		if e.Kind == fault.Forbidden && e.Law == "" {
-			field = "" // it is the law
-		}
-		f.faults = append(f.faults, e.Move(path(field)))
+		f.faults = append(f.faults, e.Move(path(e.Path())))
 	}
 }
 

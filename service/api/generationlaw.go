@@ -7,23 +7,24 @@ import (
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 )
 
-// law converts an angular law, which must be one for the particles of the reaction.
+// law converts an angular law, which must be that of the reaction; p is the product whose
+// angle it shapes.
 func (g *generationForm) law(path string, r *reaction.Reaction, p *particle.Particle, law kinegatev1.AngularLaw) generation.AngularLaw {
-	in, out, two := twoToTwo(r)
+	holds := law == lawOf(r)
 	allowed := "a law of the contract"
 	switch law {
 	case kinegatev1.AngularLaw_ANGULAR_LAW_PAIR_CREATION:
-		if two && isPhoton(in[0]) && isPhoton(in[1]) && isLeptonPair(out[0], out[1]) {
+		if holds {
 			return generation.PairCreation
 		}
 		allowed = "only for gamma gamma -> l+ l-"
 	case kinegatev1.AngularLaw_ANGULAR_LAW_ANNIHILATION:
-		if two && isLeptonPair(in[0], in[1]) && isPhoton(out[0]) && isPhoton(out[1]) {
+		if holds {
 			return generation.Annihilation
 		}
 		allowed = "only for l+ l- -> gamma gamma"
 	case kinegatev1.AngularLaw_ANGULAR_LAW_COMPTON:
-		if two && isPhoton(in[0]) != isPhoton(in[1]) && isPhoton(out[0]) != isPhoton(out[1]) && isPhoton(p) {
+		if holds && isPhoton(p) {
 			return generation.ComptonScattering
 		}
 		allowed = "only for gamma e- -> gamma e-, and for its photon"
@@ -33,33 +34,33 @@ func (g *generationForm) law(path string, r *reaction.Reaction, p *particle.Part
 	return generation.NoLaw
 }
 
-// twoToTwo returns the particles of a reaction of two to two.
-func twoToTwo(r *reaction.Reaction) (in, out [2]*particle.Particle, ok bool) {
+// lawOf is the law of quantum electrodynamics for a reaction; unspecified for none.
+func lawOf(r *reaction.Reaction) kinegatev1.AngularLaw {
 	if len(r.Initial) != 2 || len(r.Top) != 2 {
-		return in, out, false
+		return kinegatev1.AngularLaw_ANGULAR_LAW_UNSPECIFIED
 	}
+	var in, out [2]*particle.Particle
 	for k := range in {
 		in[k], out[k] = &r.Initial[k], &r.Products[r.Top[k]].Particle
 	}
-	return in, out, true
+	oneOfEach := func(pair [2]*particle.Particle) bool {
+		return isPhoton(pair[0]) && isChargedLepton(pair[1]) || isChargedLepton(pair[0]) && isPhoton(pair[1])
+	}
+	switch {
+	case isPhoton(in[0]) && isPhoton(in[1]) && isLeptonPair(out[0], out[1]):
+		return kinegatev1.AngularLaw_ANGULAR_LAW_PAIR_CREATION
+	case isLeptonPair(in[0], in[1]) && isPhoton(out[0]) && isPhoton(out[1]):
+		return kinegatev1.AngularLaw_ANGULAR_LAW_ANNIHILATION
+	case oneOfEach(in) && oneOfEach(out):
+		return kinegatev1.AngularLaw_ANGULAR_LAW_COMPTON
+	}
+	return kinegatev1.AngularLaw_ANGULAR_LAW_UNSPECIFIED
 }
 
 // lawRemarks says of a reaction that is made isotropic that a law for it exists.
 func lawRemarks(r *reaction.Reaction, angle *kinegatev1.ProductionAngle) []string {
-	in, out, two := twoToTwo(r)
-	if angle != nil || !two {
-		return nil
-	}
-	charged := func(pair [2]*particle.Particle) bool { return isChargedLepton(pair[0]) || isChargedLepton(pair[1]) }
-	law := kinegatev1.AngularLaw_ANGULAR_LAW_UNSPECIFIED
-	switch {
-	case isPhoton(in[0]) && isPhoton(in[1]) && isLeptonPair(out[0], out[1]):
-		law = kinegatev1.AngularLaw_ANGULAR_LAW_PAIR_CREATION
-	case isLeptonPair(in[0], in[1]) && isPhoton(out[0]) && isPhoton(out[1]):
-		law = kinegatev1.AngularLaw_ANGULAR_LAW_ANNIHILATION
-	case isPhoton(in[0]) != isPhoton(in[1]) && isPhoton(out[0]) != isPhoton(out[1]) && charged(in):
-		law = kinegatev1.AngularLaw_ANGULAR_LAW_COMPTON
-	default:
+	law := lawOf(r)
+	if angle != nil || law == kinegatev1.AngularLaw_ANGULAR_LAW_UNSPECIFIED {
 		return nil
 	}
 	return []string{"isotropic in the centre of mass; " + law.String() + " of the channel's angle, in a generation file, is the law of " +

@@ -121,7 +121,6 @@ func (g *generationStream) settle() error {
 	}
 	sent := g.sent
 	g.sent = nil
-	g.work.end() // others have the turn meanwhile
 	limit := g.service.deps.StallLimit
 	stalled := time.NewTimer(limit)
 	defer stalled.Stop()

@@ -26,7 +26,7 @@ func judgingAgainst(reference string) measure {
 		if err != nil {
 			return 0, fmt.Errorf("judging in process: %w: %s", err, lastLine(string(own)))
 		}
-		other, err := referenceJudging(ctx, reference, folder, events)
+		other, err := referenceOutput(ctx, reference, "judging", folder, events)
 		if err != nil {
 			return 0, err
 		}
@@ -40,22 +40,6 @@ func judgingAgainst(reference string) measure {
 		}
 		return theirs / ours, sameAccepted(string(own), other)
 	}
-}
-
-// referenceJudging is what the reference prints about the events of a file.
-func referenceJudging(ctx context.Context, reference, folder, events string) (string, error) {
-	if reference == "numpy" {
-		python, err := pythonWithNumpy(ctx)
-		if err != nil {
-			return "", err
-		}
-		return output(ctx, python, "testdata/bench/judging.py", events)
-	}
-	program := filepath.Join(folder, "loop")
-	if _, err := output(ctx, "g++", "-O2", "-o", program, "testdata/bench/judging.cpp"); err != nil {
-		return "", err
-	}
-	return output(ctx, program, events)
 }
 
 // sameAccepted refuses to compare two that do not judge alike.

@@ -17,10 +17,10 @@
 // record (metrics and log) sees everything; below it a panic is contained; then the
 // caller is authorised, then admitted, before any work; last, the deadline is set, the
 // message received, its work admitted by cost, and the handler runs. What is open long
-// is authorised again every few seconds. Unary calls are registered as streams with one message each way,
-// which is what gRPC makes of them anyway: it lets one chain serve both, and it lets
-// bytes that do not decode, messages over the limit and unknown methods be answered
-// through the registry of reasons like all else.
+// is authorised again every few seconds. Unary calls are registered as streams with one
+// message each way, which is what gRPC makes of them anyway: it lets one chain serve
+// both, and it lets bytes that do not decode, messages over the limit and unknown
+// methods be answered through the registry of reasons like all else.
 //
 // Messages are read frame by frame below gRPC's own reading, and lists of headers are
 // measured as soon as they are there, so that what is over a limit or compressed is

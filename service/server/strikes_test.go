@@ -13,20 +13,31 @@ import (
 
 func TestStrikes(t *testing.T) {
 	now := time.Unix(0, 0)
-	var s strikes
-	for i := range mostStrikes {
-		if s.note(true, now) {
-			t.Fatalf("call %d is one too many", i)
+	full := func() *strikes {
+		s := &strikes{}
+		for i := range mostStrikes {
+			if s.note(true, now) {
+				t.Fatalf("call %d is one too many", i)
+			}
 		}
+		return s
 	}
+	s := full()
 	if !s.note(true, now) {
 		t.Error("not bounded")
 	}
+	if s.note(true, now) {
+		t.Error("told twice")
+	}
+	s = full()
 	now = now.Add(time.Second)
-	for i := range strikesPerSecond - 1 {
+	for i := range strikesPerSecond {
 		if s.note(true, now) {
 			t.Fatalf("a second later, call %d is one too many", i)
 		}
+	}
+	if !s.note(true, now) {
+		t.Error("a second later, not bounded")
 	}
 	var patient strikes
 	for i := range 10 * mostStrikes {

@@ -35,16 +35,15 @@ type waiter struct {
 // of the same cost.
 func (q *workQueue) enter(ctx context.Context, cost, slots int) error {
 	q.mu.Lock()
-	now, err := q.placeLocked(cost, slots)
-	if now {
-		q.takeLocked(cost)
-	}
-	if now || err != nil {
+	switch now, err := q.placeLocked(cost, slots); {
+	case err != nil:
 		q.mu.Unlock()
-		if err == nil {
-			q.metrics.WorkAdmitted(0)
-		}
 		return err
+	case now:
+		q.takeLocked(cost)
+		q.mu.Unlock()
+		q.metrics.WorkAdmitted(0)
+		return nil
 	}
 	w := &waiter{ctx, cost, slots, make(chan struct{})}
 	q.waiting = append(q.waiting, w)

@@ -8,10 +8,12 @@ import (
 	"fmt"
 	"os"
 	"path/filepath"
+	"strconv"
 	"strings"
 
 	"google.golang.org/genproto/googleapis/rpc/errdetails"
 	"google.golang.org/grpc"
+	"google.golang.org/grpc/codes"
 	"google.golang.org/grpc/status"
 	"google.golang.org/protobuf/encoding/protojson"
 	"google.golang.org/protobuf/proto"
@@ -147,36 +149,32 @@ func (f *Failure) check(err error) error {
 	if !ok {
 		return fmt.Errorf("no failure of an rpc: %w", err)
 	}
-	got := Failure{Code: codeName(s)}
+	code, unknown := f.code()
+	if unknown != nil {
+		return unknown
+	}
+	var reason string
 	named := f.Field == ""
 	for _, d := range s.Details() {
 		switch x := d.(type) {
 		case *errdetails.ErrorInfo:
-			got.Reason = x.GetReason()
+			reason = x.GetReason()
 		case *errdetails.BadRequest:
 			for _, v := range x.GetFieldViolations() {
-				got.Field = v.GetField()
 				named = named || v.GetField() == f.Field
 			}
 		}
 	}
-	if got.Code != f.Code || got.Reason != f.Reason || !named {
-		return fmt.Errorf("it failed with %+v, not %+v: %w", got, *f, err)
+	if s.Code() != code || reason != f.Reason || !named {
+		return fmt.Errorf("it failed with %s and %q, not %+v: %w", s.Code(), reason, *f, err)
 	}
 	return nil
 }
 
-// codeName is the name of a code as the contract of gRPC writes it.
-func codeName(s *status.Status) string {
-	var b strings.Builder
-	for i, r := range s.Code().String() {
-		if i > 0 && r >= 'A' && r <= 'Z' {
-			b.WriteByte('_')
-		}
-		b.WriteRune(r)
+// code reads the name of the code.
+func (f *Failure) code() (code codes.Code, err error) {
+	if err := code.UnmarshalJSON([]byte(strconv.Quote(f.Code))); err != nil {
+		return code, fmt.Errorf("the code of the case: %w", err)
 	}
-	if name := strings.ToUpper(b.String()); name != "CANCELED" {
-		return strings.ReplaceAll(name, "O_K", "OK")
-	}
-	return "CANCELLED"
+	return code, nil
 }

@@ -214,16 +214,13 @@ func (c *connection) quiet(s *Step) error {
 
 // status is the failure as a status with its details.
 func (f *Failure) status() error {
-	for code := codes.OK; code <= codes.Unauthenticated; code++ {
-		s := status.New(code, "by the script")
-		if codeName(s) != f.Code {
-			continue
-		}
-		detailed, err := s.WithDetails(&errdetails.ErrorInfo{Reason: f.Reason, Domain: "kinegate.example.org"})
-		if err != nil {
-			return err
-		}
-		return detailed.Err()
+	code, err := f.code()
+	if err != nil {
+		return err
 	}
-	return fmt.Errorf("there is no code %s", f.Code)
+	s, err := status.New(code, "by the script").WithDetails(&errdetails.ErrorInfo{Reason: f.Reason, Domain: "kinegate.example.org"})
+	if err != nil {
+		return err
+	}
+	return s.Err()
 }

@@ -118,19 +118,7 @@ func (e *environment) reach(ctx context.Context, address string, client *kinegat
 	ctx, cancel := e.calling(ctx)
 	defer cancel()
 	reached := make(chan error, 1)
-	go func() {
-		err := client.Reach(ctx)
-		for again := time.Tick(reachAgain); err != nil && e.wait && ctx.Err() == nil; {
-			select {
-			case <-again:
-				if latest := client.Reach(ctx); ctx.Err() == nil {
-					err = latest
-				}
-			case <-ctx.Done():
-			}
-		}
-		reached <- err
-	}()
+	go func() { reached <- e.tryUntil(ctx, client) }()
 	quiet := time.NewTimer(quietReach)
 	defer quiet.Stop()
 	select {
@@ -140,6 +128,23 @@ func (e *environment) reach(ctx context.Context, address string, client *kinegat
 	}
 	_, _ = fmt.Fprintf(e.err, "kinegate: waiting for a server at %s, up to %s\n", address, e.timeout)
 	return <-reached
+}
+
+// tryUntil connects, again and again if it is to wait; the last reason before the time was
+// over counts.
+func (e *environment) tryUntil(ctx context.Context, client *kinegate.Client) error {
+	err := client.Reach(ctx)
+	for err != nil && e.wait {
+		select {
+		case <-time.After(reachAgain):
+		case <-ctx.Done():
+			return err
+		}
+		if latest := client.Reach(ctx); ctx.Err() == nil {
+			err = latest
+		}
+	}
+	return err
 }
 
 // ownServer is a server in this process.

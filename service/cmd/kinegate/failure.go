@@ -61,27 +61,34 @@ func hint(s *status.Status) string {
 	return ""
 }
 
-// byFlags puts the flags of the commands in place of the fields that they fill.
-func byFlags(message string) string {
-	return strings.NewReplacer(
-		"beam.total_energy_gev", "--beam in GeV", "beam.kinetic_energy_gev", "--beam-kinetic in GeV", "beam.momentum_gev", "--beam-momentum in GeV",
-		"beam1.total_energy_gev", "--beam in GeV", "beam1.kinetic_energy_gev", "--beam-kinetic in GeV", "beam1.momentum_gev", "--beam-momentum in GeV",
-		"beam2.total_energy_gev", "--beam2 in GeV", "beam2.kinetic_energy_gev", "--beam2-kinetic in GeV", "beam2.momentum_gev", "--beam2-momentum in GeV",
-		"parent.total_energy_gev", "--parent in GeV", "parent.kinetic_energy_gev", "--parent-kinetic in GeV", "parent.momentum_gev", "--parent-momentum in GeV",
-		"angle_between_beams_rad", "--angle in rad", "sqrt_s_gev", "--sqrt-s in GeV",
-		"opening_angles_rad", "--opening-angle in rad", "rest_frame_cosines", "--rest-cosine", "laboratory_angles_rad", "--lab-angle in rad",
-	).Replace(message)
+// byFlag puts the flag of a command in place of the field that it fills, where a sentence
+// begins with that. Longer paths are those of files.
+func byFlag(sentence string) string {
+	for _, p := range [][2]string{
+		{"beam.total_energy_gev", "--beam in GeV"}, {"beam.kinetic_energy_gev", "--beam-kinetic in GeV"}, {"beam.momentum_gev", "--beam-momentum in GeV"},
+		{"beam1.total_energy_gev", "--beam in GeV"}, {"beam1.kinetic_energy_gev", "--beam-kinetic in GeV"},
+		{"beam1.momentum_gev", "--beam-momentum in GeV"}, {"beam2.total_energy_gev", "--beam2 in GeV"},
+		{"beam2.kinetic_energy_gev", "--beam2-kinetic in GeV"}, {"beam2.momentum_gev", "--beam2-momentum in GeV"},
+		{"parent.total_energy_gev", "--parent in GeV"}, {"parent.kinetic_energy_gev", "--parent-kinetic in GeV"},
+		{"parent.momentum_gev", "--parent-momentum in GeV"}, {"angle_between_beams_rad", "--angle in rad"}, {"sqrt_s_gev", "--sqrt-s in GeV"},
+		{"opening_angles_rad", "--opening-angle in rad"}, {"rest_frame_cosines", "--rest-cosine"}, {"laboratory_angles_rad", "--lab-angle in rad"},
+	} {
+		if rest, ok := strings.CutPrefix(sentence, p[0]); ok && strings.IndexAny(rest+" ", " :[") == 0 {
+			return p[1] + rest
+		}
+	}
+	return sentence
 }
 
 // describeStatus prints a status of the server: its sentence, the other fields at
 // fault, and a mark under the place in the text where there is one.
 func describeStatus(s *status.Status) string {
-	lines := []string{byFlags(s.Message())}
+	lines := []string{byFlag(s.Message())}
 	for _, d := range s.Details() {
 		if detail, ok := d.(*errdetails.BadRequest); ok {
 			for _, v := range detail.GetFieldViolations() {
 				if v.GetDescription() != "" && !strings.Contains(s.Message(), v.GetDescription()) {
-					lines = append(lines, "  "+byFlags(v.GetField()+": "+v.GetDescription()))
+					lines = append(lines, "  "+v.GetField()+": "+v.GetDescription())
 				}
 			}
 		}

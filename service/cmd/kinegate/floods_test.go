@@ -29,15 +29,7 @@ import (
 func TestFloods(t *testing.T) {
 	operations(t)
 	certificate, key := selfSigned(t)
-	p := process(t, onLoopback("--drain-notice", "0s", "--certificate-file", certificate, "--key-file", key)...)
-	log, err := p.StderrPipe()
-	if err != nil {
-		t.Fatal(err)
-	}
-	if err := p.Start(); err != nil {
-		t.Fatal(err)
-	}
-	where := addresses(t, log)
+	p, where := startServing(t, "--drain-notice", "0s", "--certificate-file", certificate, "--key-file", key)
 	client, err := kinegate.Dial(where["general"], kinegate.Options{TLS: true, CAFile: certificate, ServerName: "localhost"})
 	if err != nil {
 		t.Fatal(err)

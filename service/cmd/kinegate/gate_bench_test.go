@@ -109,19 +109,13 @@ type gate struct {
 
 func startGate(t testing.TB, more ...string) *gate {
 	t.Helper()
-	p := process(t, onLoopback(append(more, "--drain-notice", "0s")...)...)
-	log, err := p.StderrPipe()
-	if err != nil {
-		t.Fatal(err)
-	}
-	if err := p.Start(); err != nil {
-		t.Fatal(err)
-	}
+	p, where := startServing(t, append(more, "--drain-notice", "0s")...)
 	t.Cleanup(func() {
 		_ = p.Process.Kill()
 		_ = p.Wait()
 	})
-	g := &gate{process: p, where: addresses(t, log)}
+	g := &gate{process: p, where: where}
+	var err error
 	if g.client, err = kinegate.Dial(g.where["gate"], kinegate.Options{}); err != nil {
 		t.Fatal(err)
 	}

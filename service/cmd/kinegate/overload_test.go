@@ -25,15 +25,7 @@ import (
 func TestOverload(t *testing.T) {
 	operations(t)
 	span := spanOf(t, "OVERLOAD_SPAN", 10*time.Second)
-	p := process(t, onLoopback("--drain-notice", "0s", "--caller-calls", "128", "--log-burst", "1")...)
-	log, err := p.StderrPipe()
-	if err != nil {
-		t.Fatal(err)
-	}
-	if err := p.Start(); err != nil {
-		t.Fatal(err)
-	}
-	where := addresses(t, log)
+	p, where := startServing(t, "--drain-notice", "0s", "--caller-calls", "128", "--log-burst", "1")
 	defer func() {
 		_ = p.Process.Signal(syscall.SIGTERM)
 		if code := exitCode(t, p.Wait()); code != 0 {

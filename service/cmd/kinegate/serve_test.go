@@ -191,6 +191,20 @@ func dial(t *testing.T, where string) *grpc.ClientConn {
 	return conn
 }
 
+// startServing starts a server on loopback ports and returns its process and addresses.
+func startServing(t testing.TB, arguments ...string) (p *exec.Cmd, where map[string]string) {
+	t.Helper()
+	p = process(t, onLoopback(arguments...)...)
+	log, err := p.StderrPipe()
+	if err != nil {
+		t.Fatal(err)
+	}
+	if err := p.Start(); err != nil {
+		t.Fatal(err)
+	}
+	return p, addresses(t, log)
+}
+
 // TestProcessLife starts a real process, calls it, and ends it with signals.
 func TestProcessLife(t *testing.T) {
 	for _, c := range []struct {
@@ -203,15 +217,7 @@ func TestProcessLife(t *testing.T) {
 		{"a second stops at once", "10m", []os.Signal{syscall.SIGTERM, os.Interrupt}, 6 * time.Second},
 	} {
 		t.Run(c.name, func(t *testing.T) {
-			p := process(t, onLoopback("--drain-notice", c.notice, "--termination-grace", "1h")...)
-			log, err := p.StderrPipe()
-			if err != nil {
-				t.Fatal(err)
-			}
-			if err := p.Start(); err != nil {
-				t.Fatal(err)
-			}
-			where := addresses(t, log)
+			p, where := startServing(t, "--drain-notice", c.notice, "--termination-grace", "1h")
 			conn := dial(t, where["general"])
 			reply, err := kinegatev1.NewReactionServiceClient(conn).DescribeReaction(t.Context(), &kinegatev1.DescribeReactionRequest{
 				Form: &kinegatev1.DescribeReactionRequest_Reaction{Reaction: "gamma p -> K+ Lambda"},
