@@ -1,6 +1,7 @@
 package api
 
 import (
+	"sync/atomic"
 	"testing"
 	"testing/synctest"
 	"time"
@@ -16,7 +17,7 @@ type turnTaker struct {
 	turns *turns
 	// during counts the blocks that came while the turns were taken.
 	blocks, during int
-	back           bool
+	back           atomic.Bool
 }
 
 func (s *turnTaker) Send(m *kinegatev1.GenerateEventsResponse) error {
@@ -32,12 +33,12 @@ func (s *turnTaker) Send(m *kinegatev1.GenerateEventsResponse) error {
 			}
 		}
 		time.AfterFunc(time.Second, func() {
-			s.back = true
+			s.back.Store(true)
 			for range s.turns.count() {
 				s.turns.giveBack()
 			}
 		})
-	case !s.back:
+	case !s.back.Load():
 		s.during++
 	}
 	return nil

@@ -134,9 +134,11 @@ func (e *environment) reach(ctx context.Context, address string, client *kinegat
 // over counts.
 func (e *environment) tryUntil(ctx context.Context, client *kinegate.Client) error {
 	err := client.Reach(ctx)
+	again := time.NewTicker(reachAgain)
+	defer again.Stop()
 	for err != nil && e.wait {
 		select {
-		case <-time.After(reachAgain):
+		case <-again.C:
 		case <-ctx.Done():
 			return err
 		}
