@@ -41,6 +41,8 @@ type Options struct {
 	StallLimit  time.Duration
 	BehindProxy bool
 
+	UntilInputEnds bool
+
 	ParticleFiles, SelectionFiles []string
 	SelectionFolder               string
 	Reflection                    bool

@@ -149,6 +149,8 @@ func timeSettings() []Setting {
 			func(o *Options) Value { return span(&o.StallLimit, time.Second, day) }},
 		{"behind_proxy", "false", "End a stalled stream alone and leave its connection, which behind a proxy many callers share.",
 			func(o *Options) Value { return truth(&o.BehindProxy) }},
+		{"until_input_ends", "false", "Drain as on SIGTERM once standard input ends, as a pipe does with the process that holds its other end.",
+			func(o *Options) Value { return truth(&o.UntilInputEnds) }},
 		{"drain_notice", "5s", "Time between NOT_SERVING and the end of service, for balancers to notice.",
 			func(o *Options) Value { return span(&o.DrainNotice, 0, 10*minute) }},
 		{"drain_time", "25s", "Time after the notice for calls and streams to end.",

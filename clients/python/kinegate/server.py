@@ -11,6 +11,7 @@ import shutil
 import subprocess
 import threading
 import time
+import weakref
 from typing import TYPE_CHECKING, Final, Self
 
 from kinegate.client import Client, connect
@@ -26,10 +27,14 @@ __all__ = ["LocalServer", "find_program", "start_server"]
 
 _LISTENING: Final = re.compile(r"listening for (\w+) at (\S+)")
 _KEPT_LINES: Final = 200
+_running: weakref.WeakSet[LocalServer] = weakref.WeakSet()
 
 
 class LocalServer:
-    """A running `kinegate serve` that belongs to this process; it ends with it.
+    """A running `kinegate serve` that belongs to this process and ends with it, however it ends.
+
+    A pipe holds the two together: the server has one end as its standard input, this process
+    alone the other, and the system closes that with the process, by whatever signal.
 
     >>> with kinegate.start_server() as local:
     ...     local.address
@@ -40,12 +45,13 @@ class LocalServer:
         self._guard = ProcessGuard("server")
         self.process = subprocess.Popen(  # noqa: S603  # the program that the caller named
             command,
-            stdin=subprocess.DEVNULL,
+            stdin=subprocess.PIPE,
             stdout=subprocess.PIPE,
             stderr=subprocess.STDOUT,
             text=True,
         )
         """The process."""
+        _running.add(self)
         self._log: collections.deque[str] = collections.deque(maxlen=_KEPT_LINES)
         self._addresses: dict[str, str] = {}
         self._changed = threading.Condition()
@@ -99,6 +105,7 @@ class LocalServer:
             except subprocess.TimeoutExpired:
                 self.process.kill()
                 self.process.wait()
+        self._let_go()
         self._reader.join(1)
         if self.process.stdout is not None and not self._reader.is_alive():
             self.process.stdout.close()
@@ -114,6 +121,11 @@ class LocalServer:
     ) -> None:
         self.stop()
 
+    def _let_go(self) -> None:
+        """Close this process's end of the pipe."""
+        if self.process.stdin is not None:
+            self.process.stdin.close()
+
     def _read(self) -> None:
         """Keep the log flowing, and note where the server listens."""
         if self.process.stdout is None:
@@ -126,6 +138,16 @@ class LocalServer:
                 self._changed.notify_all()
         with self._changed:
             self._changed.notify_all()
+
+
+def _let_go_of_all() -> None:
+    """Leave the servers of a parent to it: a forked child must not hold their pipes."""
+    for server in list(_running):
+        server._let_go()  # noqa: SLF001  # of the same module
+
+
+if hasattr(os, "register_at_fork"):
+    os.register_at_fork(after_in_child=_let_go_of_all)
 
 
 def start_server(
@@ -155,6 +177,7 @@ def start_server(
         *(find_program(program), "serve"),
         *("--general-address", loopback, "--gate-address", loopback),
         *("--health-address", "", "--metrics-address", ""),
+        "--until-input-ends",
         *("--drain-notice", "0s", "--drain-time", "2s", "--log-level", "info"),
     ]
     for flag, files in (

@@ -4,6 +4,7 @@ import (
 	"context"
 	"errors"
 	"fmt"
+	"io"
 	"os"
 	"os/signal"
 	"runtime/debug"
@@ -33,7 +34,9 @@ func serveCommand(p program) *cobra.Command {
 			"they change, the first two also on SIGHUP; what is not sound stays as it was.\n\n" +
 			"SIGTERM and SIGINT drain it: health turns NOT_SERVING, calls are answered until the\n" +
 			"notice and the time to drain are over, then it exits with 0. A second signal stops it\n" +
-			"at once. Faults of the configuration exit with 2, a server that fails with 1.",
+			"at once. The end of standard input drains it too with --until-input-ends, so that a server\n" +
+			"ends with the process that started it. Faults of the configuration exit with 2, a server\n" +
+			"that fails with 1.",
 		Args: usage(cobra.NoArgs),
 		RunE: func(command *cobra.Command, _ []string) error { return s.run(command.Context()) },
 	}
@@ -118,7 +121,11 @@ func (s *serving) run(ctx context.Context) error {
 		_, err := fmt.Fprintln(s.out, "the settings and the files that they name are sound")
 		return err
 	}
-	return s.serve(ctx, server, func(text string) { log.Info().Msg(text) })
+	until := context.Background()
+	if options.UntilInputEnds {
+		until = s.whileInput(until)
+	}
+	return s.serve(ctx, until, server, func(text string) { log.Info().Msg(text) })
 }
 
 // settings reads the settings from all their sources.
@@ -133,6 +140,16 @@ func (s *serving) keepMemory(options *server.Options) {
 	if limit := options.HeapLimit(); limit > 0 && !told && !s.validateOnly {
 		debug.SetMemoryLimit(limit)
 	}
+}
+
+// whileInput returns a context that ends with standard input.
+func (s *serving) whileInput(ctx context.Context) context.Context {
+	ctx, cancel := context.WithCancel(ctx)
+	go func() {
+		_, _ = io.Copy(io.Discard, s.in) // input that cannot be read has ended too
+		cancel()
+	}()
+	return ctx
 }
 
 // stopped waits for a signal to stop, or for ctx or the server to end before one comes.
@@ -153,27 +170,28 @@ func (s *serving) stopped(ctx context.Context, running *server.Server, failed <-
 	}
 }
 
-// serve runs the server until a signal has stopped it or it fails.
-func (s *serving) serve(ctx context.Context, running *server.Server, say func(string)) error {
+// serve runs the server until a signal has stopped it, until has ended or it fails.
+func (s *serving) serve(ctx, until context.Context, running *server.Server, say func(string)) error {
 	if err := running.Listen(ctx); err != nil {
 		return err
+	}
+	if s.signals == nil {
+		// Only here: other commands end by a signal at once. Before it is said that it
+		// listens, since who reads that may send one. A burst of signals beyond the second
+		// says nothing new.
+		signals := make(chan os.Signal, 2)
+		signal.Notify(signals, os.Interrupt, syscall.SIGTERM, syscall.SIGHUP)
+		defer signal.Stop(signals)
+		s.signals = signals
 	}
 	for _, name := range []server.Listener{server.Gate, server.General, server.Health, server.Metrics, server.Debug} {
 		if a := running.Addr(name); a != nil {
 			say(fmt.Sprintf("listening for %s at %s", name, a))
 		}
 	}
-	if s.signals == nil {
-		// Only here: other commands end by a signal at once. A burst of signals beyond
-		// the second says nothing new.
-		signals := make(chan os.Signal, 2)
-		signal.Notify(signals, os.Interrupt, syscall.SIGTERM, syscall.SIGHUP)
-		defer signal.Stop(signals)
-		s.signals = signals
-	}
 	failed := make(chan error, 1)
 	go func() { failed <- running.Serve(ctx) }()
-	if err := s.stopped(context.Background(), running, failed); err != nil {
+	if err := s.stopped(until, running, failed); err != nil {
 		return err
 	}
 	say("draining")

@@ -6,6 +6,7 @@ import (
 	"context"
 	"encoding/json"
 	"errors"
+	"fmt"
 	"io"
 	"net"
 	"os"
@@ -32,6 +33,10 @@ func TestMain(m *testing.M) {
 	if os.Getenv(asProgram) != "" {
 		_ = os.Unsetenv(asProgram)
 		main()
+	}
+	if order := os.Getenv(asFlood); order != "" {
+		flood(order)
+		return
 	}
 	os.Exit(m.Run()) //nolint:forbidigo // this is the main of the tests
 }
@@ -252,6 +257,57 @@ func TestProcessLife(t *testing.T) {
 			}
 			if took := time.Since(begun); took > c.most {
 				t.Errorf("took %v", took)
+			}
+		})
+	}
+}
+
+// TestServerEndsWithItsInput: a server that is told so ends with the pipe that it was given as
+// input, gracefully; another does not read its input.
+func TestServerEndsWithItsInput(t *testing.T) {
+	// It takes some 10 ms to end; the other is given the time to show that it does not.
+	for told, wait := range map[bool]time.Duration{true: 2 * time.Second, false: 300 * time.Millisecond} {
+		t.Run(fmt.Sprint("told ", told), func(t *testing.T) {
+			p := process(t, onLoopback("--drain-notice", "0s", fmt.Sprint("--until-input-ends=", told))...)
+			log, err := p.StderrPipe()
+			if err != nil {
+				t.Fatal(err)
+			}
+			input, err := p.StdinPipe()
+			if err != nil {
+				t.Fatal(err)
+			}
+			if err := p.Start(); err != nil {
+				t.Fatal(err)
+			}
+			client := kinegatev1.NewInfoServiceClient(dial(t, addresses(t, log)["general"]))
+			ask := func() {
+				t.Helper()
+				if _, err := client.GetInfo(t.Context(), &kinegatev1.GetInfoRequest{}); err != nil {
+					t.Error(err)
+				}
+			}
+			if _, err := input.Write([]byte("what is written does not matter\n")); err != nil {
+				t.Error(err)
+			}
+			ask()
+			_ = input.Close()
+			ended := make(chan error, 1)
+			go func() { ended <- p.Wait() }()
+			select {
+			case err := <-ended:
+				if code := exitCode(t, err); !told || code != 0 {
+					t.Errorf("ended with code %d", code)
+				}
+			case <-time.After(wait):
+				if told {
+					t.Error("the server outlives its input")
+				}
+				ask()
+				_ = p.Process.Signal(syscall.SIGTERM)
+				if code := exitCode(t, <-ended); code != 0 {
+					t.Errorf("code %d", code)
+				}
 			}
 		})
 	}
