@@ -24,15 +24,15 @@ pytestmark = [
 ]
 
 
-def test_a_hundred_thousand_calls_survive_thirty_restarts() -> None:
-    """L3: three servers, thirty restarts, no call fails."""
+def test_a_hundred_thousand_calls_survive_restarts() -> None:
+    """L3: one of three servers after the other restarts all the while, and no call fails."""
     failures: list[BaseException] = []
     calls = [0, 0]
     with replicas(3) as three, kinegate.connect(addresses(three, "general"), timeout=20) as client:
         over = threading.Event()
 
         def ask(worker: int) -> None:
-            while not (over.is_set() and sum(calls) >= 100_000):
+            while not over.is_set():
                 try:
                     assert client.particle("p").name == "p"
                 except BaseException as error:  # noqa: BLE001  # counted below
@@ -43,17 +43,20 @@ def test_a_hundred_thousand_calls_survive_thirty_restarts() -> None:
         for worker in workers:
             worker.start()
         before = time.monotonic()
-        for turn in range(30):
-            time.sleep(0.15)
-            three[turn % 3].server.stop()
-            three[turn % 3].start()
-        restarts = time.monotonic() - before
-        over.set()
-        for worker in workers:
-            worker.join()
-    print(f"{sum(calls)} calls, {len(failures)} failed; thirty restarts took {restarts:.0f} s")  # noqa: T201
+        restarts = 0
+        try:
+            while restarts < 30 or sum(calls) < 100_000:
+                time.sleep(0.15)
+                three[restarts % 3].server.stop()
+                three[restarts % 3].start()
+                restarts += 1
+        finally:
+            over.set()
+            for worker in workers:
+                worker.join()
+        took = time.monotonic() - before
+    print(f"{sum(calls)} calls, {len(failures)} failed; {restarts} restarts in {took:.0f} s")  # noqa: T201
     assert not failures
-    assert sum(calls) >= 100_000
 
 
 @pytest.mark.parametrize("kind", CLIENTS)
