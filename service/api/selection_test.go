@@ -1,6 +1,7 @@
 package api
 
 import (
+	"fmt"
 	"os"
 	"slices"
 	"strings"
@@ -86,6 +87,88 @@ func TestCheckNamesEveryFaultAtOnce(t *testing.T) {
 	}
 	if reply.GetSelectionDigest() != "" || len(reply.GetHypotheses()) != 0 {
 		t.Errorf("a faulty selection has a digest or outline: %v", reply)
+	}
+}
+
+// TestCheckCountsWhatItCannotRead: entries of a list that cannot be read move none after them.
+func TestCheckCountsWhatItCannotRead(t *testing.T) {
+	t.Parallel()
+	reply := checkText(t, `name: places
+hypotheses:
+  - pi0
+  - name: pi0
+    reaction: "gamma p -> p pi0, pi0 -> gamma gama"
+  - name: eta
+    reaction: "gamma p -> p eta, eta -> gamma gamma"
+    beam: {tagged: {}}
+    condition:
+      all_of:
+        - [window]
+        - window: {invariant_mass: {products: [7, eta, pi0], max_gev: 1}}
+`)
+	var got []string
+	for _, f := range reply.GetFaults() {
+		got = append(got, fmt.Sprintf("%d:%d %s", f.GetLine(), f.GetColumn(), f.GetField()))
+	}
+	want := []string{
+		"3:5 hypotheses[0]",
+		"5:5 hypotheses[1].reaction",
+		"11:11 hypotheses[2].condition.all_of[0]",
+		"12:48 hypotheses[2].condition.all_of[1].window.invariant_mass.products[0]",
+		"12:56 hypotheses[2].condition.all_of[1].window.invariant_mass.products[2]",
+	}
+	if !slices.Equal(got, want) {
+		t.Errorf("faults at\n%s\nwant\n%s", strings.Join(got, "\n"), strings.Join(want, "\n"))
+	}
+}
+
+// TestFaultsOfStructuredReactions: the field at fault is named down to the product, by the
+// check and by a refusal.
+func TestFaultsOfStructuredReactions(t *testing.T) {
+	t.Parallel()
+	text := `name: deep
+hypotheses:
+  - name: deep
+    structured_reaction:
+      initial: [gamma, p]
+      products:
+        - particle: p
+        - particle: eta
+          daughters:
+            - {particle: pi0}
+            - particle: pi0
+              daughters: [{particle: gamma}, {particle: PRODUCT}]
+            - {particle: pi0}
+    beam: {tagged: {}}
+`
+	const product = "structured_reaction.products[1].daughters[1]"
+	for _, c := range []struct{ name, field, place, message string }{
+		{"gama", product + ".daughters[1].particle", "12:47", "unknown particle"},
+		{"eta", product, "11:15", "energy is not conserved in pi0 -> gamma eta"},
+	} {
+		t.Run(c.name, func(t *testing.T) {
+			t.Parallel()
+			reply := checkText(t, strings.Replace(text, "PRODUCT", c.name, 1))
+			field := "hypotheses[0]." + c.field
+			if len(reply.GetFaults()) != 1 {
+				t.Fatalf("faults %v", reply.GetFaults())
+			}
+			f := reply.GetFaults()[0]
+			place := fmt.Sprintf("%d:%d", f.GetLine(), f.GetColumn())
+			if f.GetField() != field || place != c.place || !strings.Contains(f.GetMessage(), c.message) {
+				t.Errorf("%s %s: %s, want %s %s: %s", place, f.GetField(), f.GetMessage(), c.place, field, c.message)
+			}
+			block, _ := dimuon()
+			_, err := newServices(t).bulk.JudgeBlock(t.Context(), &kinegatev1.JudgeBlockRequest{
+				Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: reply.GetSelection()}}, Block: block,
+			})
+			if err == nil {
+				t.Fatal("the faulty selection judges")
+			}
+			if v := Explain(err).Violations; len(v) != 1 || v[0].Field != "selection.inline."+field {
+				t.Errorf("violations %v", v)
+			}
+		})
 	}
 }
 

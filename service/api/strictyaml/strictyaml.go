@@ -50,8 +50,9 @@ func (p Positions) Find(field string) Position {
 }
 
 // Unmarshal reads text into message, which should be empty. Without faults the
-// message holds the whole text; with faults, what could be read. A text that is not
-// YAML has no positions: nothing of it could be read.
+// message holds the whole text; with faults, what could be read, with an empty entry in
+// a list for one that could not. A text that is not YAML has no positions: nothing of it
+// could be read.
 func Unmarshal(text []byte, message proto.Message) (Positions, []Fault) {
 	r := &reader{positions: Positions{}}
 	decoder := yaml.NewDecoder(strings.NewReader(string(text)))
@@ -161,8 +162,7 @@ func (r *reader) field(n *yaml.Node, path string, m protoreflect.Message, f prot
 	for i, item := range n.Content {
 		at := path + "[" + strconv.Itoa(i) + "]"
 		r.positions[at] = Position{Line: item.Line, Column: item.Column}
-		if v, ok := r.value(item, at, f, list.NewElement(), depth+1); ok {
-			list.Append(v)
-		}
+		v, _ := r.value(item, at, f, list.NewElement(), depth+1)
+		list.Append(v) // empty if it could not be read, so that those after it keep their places
 	}
 }

@@ -11,7 +11,7 @@ import (
 )
 
 // value reads one value of the field's kind. fresh is a new value of the field,
-// filled and returned for messages.
+// filled and returned for messages, and returned empty for what cannot be read.
 func (r *reader) value(n *yaml.Node, path string, f protoreflect.FieldDescriptor, fresh protoreflect.Value, depth int) (protoreflect.Value, bool) {
 	if f.Kind() == protoreflect.MessageKind {
 		before := len(r.faults)
