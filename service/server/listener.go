@@ -9,6 +9,7 @@ import (
 	"sync/atomic"
 	"time"
 
+	"github.com/rs/zerolog"
 	"google.golang.org/grpc/peer"
 
 	"example.org/kinegate/service/api"
@@ -74,13 +75,15 @@ func abandoned(ctx context.Context, path string) bool {
 
 // places bounds the connections of several listeners together.
 type places struct {
-	most    int64
-	open    atomic.Int64
-	metrics *telemetry.Metrics
+	most     int64
+	open     atomic.Int64
+	metrics  *telemetry.Metrics
+	suspects *suspects
+	warn     func() *zerolog.Event // starts a bounded line
 }
 
-// bounded is a listener that closes connections over the limit at once, so that they
-// cost neither a handshake nor a goroutine.
+// bounded is a listener that closes connections over the limit at once, and those from
+// addresses of suspects, so that they cost neither a handshake nor a goroutine.
 type bounded struct {
 	net.Listener
 
@@ -94,14 +97,28 @@ func (b bounded) Accept() (net.Conn, error) {
 		if err != nil {
 			return nil, err //nolint:wrapcheck // gRPC looks for net.Error in it
 		}
-		if b.places.open.Add(1) <= b.places.most {
-			b.places.metrics.Connections(1)
-			return &placed{Conn: conn, places: b.places, since: time.Now(), user: peerUser(conn)}, nil
+		placed, reason := b.places.take(conn)
+		if reason == "" {
+			return placed, nil
 		}
-		b.places.open.Add(-1)
-		b.places.metrics.Rejected(connectionLimit)
+		b.places.metrics.Rejected(reason)
 		_ = conn.Close()
 	}
+}
+
+// take takes a place for a connection, or says why there is none.
+func (p *places) take(conn net.Conn) (taken *placed, reason string) {
+	now, user := time.Now(), peerUser(conn)
+	from := whose(conn.RemoteAddr(), user)
+	if p.suspects.refused(from, now) {
+		return nil, connectionAbused
+	}
+	if p.open.Add(1) > p.most {
+		p.open.Add(-1)
+		return nil, connectionLimit
+	}
+	p.metrics.Connections(1)
+	return &placed{Conn: conn, places: p, since: now, user: user, from: from}, ""
 }
 
 // placed is a connection that gives its place back when it is closed.
@@ -112,6 +129,7 @@ type placed struct {
 	places *places
 	since  time.Time
 	user   string // number of the user at the other end of a unix socket; empty where it cannot be told
+	from   string // what it is counted against
 	once   sync.Once
 }
 
@@ -151,6 +169,11 @@ func (p *placed) Close() error {
 	p.once.Do(func() {
 		p.places.open.Add(-1)
 		p.places.metrics.Connections(-1)
+		now := time.Now()
+		if p.places.suspects.note(p.from, p.weight(now.Sub(p.since)), now) {
+			p.places.warn().Str("reason", connectionAbused).Str("peer", p.from).
+				Msg("too many connections from here came to nothing: more are refused for now")
+		}
 	})
 	return p.Conn.Close() //nolint:wrapcheck // the connection's own error
 }

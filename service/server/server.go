@@ -13,6 +13,7 @@ import (
 
 	"github.com/prometheus/client_golang/prometheus"
 	"github.com/prometheus/client_golang/prometheus/collectors"
+	"github.com/rs/zerolog"
 	"google.golang.org/grpc"
 	"google.golang.org/grpc/credentials"
 	healthpb "google.golang.org/grpc/health/grpc_health_v1"
@@ -81,8 +82,14 @@ func New(options Options, deps Deps) (*Server, error) {
 		options: options, deps: deps, metrics: metrics,
 		fronts: map[Listener]*front{}, webs: map[Listener]*http.Server{},
 		listeners: map[Listener]net.Listener{},
-		places:    places{most: int64(options.Connections), metrics: metrics},
 		leaving:   make(chan struct{}), stopped: make(chan struct{}),
+	}
+	s.places = places{
+		most: int64(options.Connections), metrics: metrics,
+		warn: func() *zerolog.Event { return s.current.Load().callLog.Refused() },
+	}
+	if !options.BehindProxy {
+		s.places.suspects = &suspects{known: map[string]*fading{}}
 	}
 	use, err := s.prepare(options)
 	if err != nil {

@@ -147,7 +147,7 @@ func timeSettings() []Setting {
 			func(o *Options) Value { return span(&o.StreamIdle, time.Second, day) }},
 		{"stall_limit", "5s", "Time without progress in sending to a stream after which it is ended.",
 			func(o *Options) Value { return span(&o.StallLimit, time.Second, day) }},
-		{"behind_proxy", "false", "End a stalled stream alone and leave its connection, which behind a proxy many callers share.",
+		{"behind_proxy", "false", "Many callers share a connection or address: end a stalled stream alone, and hold what callers give up against neither.",
 			func(o *Options) Value { return truth(&o.BehindProxy) }},
 		{"until_input_ends", "false", "Drain as on SIGTERM once standard input ends, as a pipe does with the process that holds its other end.",
 			func(o *Options) Value { return truth(&o.UntilInputEnds) }},

@@ -2,6 +2,10 @@ package server
 
 import (
 	"context"
+	"net"
+	"runtime"
+	"strconv"
+	"strings"
 	"testing"
 	"time"
 
@@ -29,6 +33,12 @@ func TestStrikes(t *testing.T) {
 	if s.note(true, now) {
 		t.Error("told twice")
 	}
+	if s.weight(time.Minute) != abuseWeight {
+		t.Error("what was closed counts as nothing")
+	}
+	if fresh := (&strikes{}); fresh.weight(0) != 1 || fresh.weight(fruitless) != 0 {
+		t.Error("not the time decides for one without calls")
+	}
 	s = full()
 	now = now.Add(time.Second)
 	for i := range strikesPerSecond {
@@ -44,6 +54,9 @@ func TestStrikes(t *testing.T) {
 		if patient.note(i%2 == 0, now) {
 			t.Fatal("half of the calls given up are too many")
 		}
+	}
+	if patient.weight(0) != 0 {
+		t.Error("a connection with calls came to nothing")
 	}
 }
 
@@ -80,4 +93,130 @@ func connect(t *testing.T, where string) *grpc.ClientConn {
 	}
 	t.Cleanup(func() { _ = conn.Close() })
 	return conn
+}
+
+func TestSuspects(t *testing.T) {
+	now := time.Unix(0, 0)
+	s := &suspects{known: map[string]*fading{}}
+	for i := range mostFruitless {
+		if s.refused("a", now) {
+			t.Fatalf("refused after %d", i)
+		}
+		if tooMany := s.note("a", 1, now); tooMany != (i == mostFruitless-1) {
+			t.Fatalf("connection %d: too many %v", i, tooMany)
+		}
+	}
+	if !s.refused("a", now) || s.refused("b", now) {
+		t.Error("not a alone is refused")
+	}
+	for range 100 {
+		s.note("a", abuseWeight, now)
+	}
+	// Counted no further than one that was thrown out takes it.
+	span := time.Second * (abuseWeight + 1) / fruitlessPerSecond
+	if !s.refused("a", now.Add(span/2)) || s.refused("a", now.Add(span)) {
+		t.Error("not let in again when it should be")
+	}
+	for i := range 3 * mostAddresses {
+		s.note(strconv.Itoa(i), 1, now)
+		if len(s.known) > mostAddresses {
+			t.Fatalf("%d addresses", len(s.known))
+		}
+	}
+	s.note("", 1, now)
+	s.note("idle", 0, now)
+	if s.known[""] != nil || s.known["idle"] != nil {
+		t.Error("counted without a cause")
+	}
+}
+
+func TestWhose(t *testing.T) {
+	for _, c := range []struct{ address, user, want string }{
+		{"192.0.2.7:80", "", "192.0.2.7"},
+		{"[::ffff:192.0.2.7]:80", "", "192.0.2.7"},
+		{"[2001:db8:1:2:3:4:5:6]:80", "", "2001:db8:1:2::/64"},
+		{"[2001:db8:1:2:7:7:7:7]:81", "", "2001:db8:1:2::/64"},
+		{"[fe80::1%eth0]:80", "", "fe80::/64"},
+		{"@", "1000", "user 1000"},
+		{"@", "", ""},
+		{"bufconn", "", ""},
+	} {
+		if got := whose(named(c.address), c.user); got != c.want {
+			t.Errorf("%s of %q: %q, want %q", c.address, c.user, got, c.want)
+		}
+	}
+}
+
+// named is an address by its text.
+type named string
+
+func (named) Network() string  { return "" }
+func (n named) String() string { return string(n) }
+
+// TestConnectionsThatComeToNothing: an address whose connections end at once without a
+// call finds no place for a while; behind a proxy it does, and so does whose calls are
+// answered.
+func TestConnectionsThatComeToNothing(t *testing.T) {
+	if runtime.GOOS != "linux" {
+		t.Skip("only Linux has all of 127.0.0.0/8")
+	}
+	const connections = 4 * mostFruitless
+	const other, worker = "127.0.0.2", "127.0.0.3"
+	for _, proxied := range []bool{false, true} {
+		t.Run("behind a proxy "+strconv.FormatBool(proxied), func(t *testing.T) {
+			r := start(t, func(o *Options, d *Deps) {
+				onSockets(o, d)
+				o.BehindProxy = proxied
+			})
+			where := r.Addr(General).String()
+			from := func(address string) net.Dialer {
+				return net.Dialer{LocalAddr: &net.TCPAddr{IP: net.ParseIP(address)}}
+			}
+			ask := func(address string) error {
+				conn, err := grpc.NewClient(where, grpc.WithTransportCredentials(insecure.NewCredentials()),
+					grpc.WithContextDialer(func(ctx context.Context, where string) (net.Conn, error) {
+						d := from(address)
+						return d.DialContext(ctx, "tcp", where)
+					}))
+				if err != nil {
+					return err
+				}
+				defer func() { _ = conn.Close() }()
+				_, err = kinegatev1.NewInfoServiceClient(conn).GetInfo(t.Context(), &kinegatev1.GetInfoRequest{})
+				return err
+			}
+			for range connections {
+				if err := ask(worker); err != nil {
+					t.Fatalf("one call a connection: %v", err)
+				}
+			}
+			hasty := from(other)
+			for range connections {
+				conn, err := hasty.DialContext(t.Context(), "tcp", where)
+				if err != nil {
+					t.Fatal(err)
+				}
+				_ = conn.Close()
+			}
+			if proxied {
+				if err := ask(other); err != nil || r.metric(t, "rpc_server_rejected_total", connectionAbused) != 0 {
+					t.Errorf("refused: %v", err)
+				}
+				return
+			}
+			if n := r.metric(t, "rpc_server_rejected_total", connectionAbused); n < connections/2 {
+				t.Errorf("%g connections refused", n)
+			}
+			if err := ask(other); err == nil {
+				t.Error("there was a place")
+			}
+			if err := ask(worker); err != nil {
+				t.Errorf("another address: %v", err)
+			}
+			if !strings.Contains(r.log.String(), `"reason":"CONNECTION_ABUSED","peer":"`+other+`"`) {
+				t.Error("no line says who")
+			}
+			eventually(t, "a place again", func() bool { return ask(other) == nil })
+		})
+	}
 }
