@@ -1,4 +1,4 @@
-"""What callers do in an hour: questions, a judge stream, changes of mind; TestSteadyClients runs it.
+"""What callers do in an hour: questions, a stream, changes of mind; TestSteadyClients runs it.
 
 Usage: python -m tests.steady GENERAL GATE SECONDS
 """
@@ -55,7 +55,7 @@ def asking(client: kinegate.Client, end: float) -> int:
     asked = 0
     while time.monotonic() < end:
         assert client.particle("p").name == "p"
-        call = client.stubs.info.GetInfo.future(info_pb2.GetInfoRequest())  # type: ignore[attr-defined]
+        call = client.stubs.info.GetInfo.future(info_pb2.GetInfoRequest())
         call.cancel()
         asked += 1
         time.sleep(TURN)
