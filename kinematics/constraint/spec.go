@@ -119,7 +119,7 @@ type Measurement struct {
 	// MassGeV is the object's mass; a new Fitter has that of the Spec.
 	MassGeV float64
 	// Origin is the point in metres from which a re-pointed object's direction is
-	// measured and Cluster is where it was found. Only their distance is used: the
+	// measured and Cluster is where it was found, along it. Only their distance is used: the
 	// fitted direction from Origin, continued over that distance, is the fitted
 	// cluster position.
 	Origin, Cluster momentum.Three

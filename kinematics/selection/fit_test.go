@@ -37,7 +37,7 @@ func fineHall(factor float64) detector.Config {
 // simulate makes events of a reaction on protons at rest.
 func simulate(t testing.TB, text string, config detector.Config, beam generation.Spectrum, events int) *sample {
 	t.Helper()
-	return simulateFrom(t, text, config, onProtons(t, beam), events)
+	return simulateFrom(t, text, config, generation.Config{Initial: onProtons(t, beam)}, events)
 }
 
 // onProtons is a beam of photons on protons at rest.
@@ -50,8 +50,8 @@ func onProtons(t testing.TB, beam generation.Spectrum) generation.Initial {
 	return generation.FixedTarget{Beam: generation.Beam{Spectrum: beam}, TargetMassGeV: p.Mass}
 }
 
-// simulateFrom makes events of a reaction from an initial state.
-func simulateFrom(t testing.TB, text string, config detector.Config, initial generation.Initial, events int) *sample {
+// simulateFrom makes events of a reaction alone from an initial state in a target.
+func simulateFrom(t testing.TB, text string, config detector.Config, from generation.Config, events int) *sample {
 	t.Helper()
 	r, err := reaction.Parse(standard(t), text)
 	if err != nil {
@@ -61,11 +61,9 @@ func simulateFrom(t testing.TB, text string, config detector.Config, initial gen
 	if err != nil {
 		t.Fatal(err)
 	}
-	generator, err := generation.New(generation.Config{
-		Seed:     8,
-		Initial:  initial,
-		Channels: []generation.Channel{{Name: "only", Fraction: 1, Products: products}},
-	})
+	from.Seed = 8
+	from.Channels = []generation.Channel{{Name: "only", Fraction: 1, Products: products}}
+	generator, err := generation.New(from)
 	if err != nil {
 		t.Fatal(err)
 	}

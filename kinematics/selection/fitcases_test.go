@@ -186,39 +186,6 @@ func TestMergedPhotons(t *testing.T) {
 	t.Logf("%d merged pions; missing mass less the proton's over its uncertainty: mean %.3f, width %.3f", len(probabilities), pulls.mean(), pulls.width())
 }
 
-// A vertex that is not measured along z: photons are seen from the origin, and the fit
-// finds z from their cluster positions.
-func TestFreeVertex(t *testing.T) {
-	h := taggedFit(2)
-	h.Fit.Vertex = selection.FreeVertexZ
-	const n, z = 400, 0.02
-	config := fineHall(1)
-	s := simulate(t, h.Reaction, config, flatBeam(), n)
-	// The photons were born at z, so the calorimeter sees them at cluster positions that
-	// give other directions from the origin.
-	b := &s.block
-	b.Clusters = &event.Positions{}
-	for row := range b.Class {
-		p := b.Coordinates.Direction(row)
-		c := momentum.Three{Z: z}.Add(p)
-		b.Clusters.Append(c.X, c.Y, c.Z)
-		b.Coordinates.Columns[1][row], b.Coordinates.Columns[2][row] = c.Theta(), c.Phi()
-	}
-	w := compile(t, h).NewWorker(selection.AllEntries)
-	pulls := &moments{}
-	for i := range n {
-		for _, x := range w.Explain(b, i, 10).Hypotheses[0].Assignments {
-			if s.isTrue(i, x.Objects) && x.Fit.Result.Status == constraint.Converged {
-				pulls.add((x.Fit.VertexZ - z) / x.Fit.VertexSigma)
-			}
-		}
-	}
-	if pulls.n < 300 || math.Abs(pulls.mean())*math.Sqrt(pulls.n) > 5 || math.Abs(pulls.width()-1)*math.Sqrt(2*pulls.n) > 5 {
-		t.Errorf("%.0f vertices, pull of z: mean %.3f, width %.3f", pulls.n, pulls.mean(), pulls.width())
-	}
-	t.Logf("%.0f vertices, pull of z: mean %.3f, width %.3f", pulls.n, pulls.mean(), pulls.width())
-}
-
 // A fit that fails is no accept, whatever the condition says, and an event that says so
 // has the status of its fit.
 func TestFailedFits(t *testing.T) {

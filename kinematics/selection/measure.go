@@ -135,15 +135,26 @@ func (w *Worker) loadObject(o *fitObject, m *constraint.Measurement) {
 
 // loadCluster sets where an object was found. The direction of an object without a
 // cluster position cannot follow the vertex, and its fit ends as singular.
+//
+// The direction may be the one seen from the measured vertex, from where the object was
+// born or from the centre of the detector. The cluster is what was measured whichever it
+// is, so the direction counts from that point of its line through the cluster which is
+// nearest to the measured vertex.
 func (w *Worker) loadCluster(o *fitObject, m *constraint.Measurement) {
 	if w.block.Clusters == nil {
 		m.Origin = nowhere()
 		return
 	}
-	row := w.objects.first + int(w.assigned[o.slot])
+	object := int(w.assigned[o.slot])
+	row, n := w.objects.first+object, w.objects.direction[object]
 	p := w.block.Clusters
-	m.Origin = w.vertex()
 	m.Cluster = momentum.Three{X: p.X[row], Y: p.Y[row], Z: p.Z[row]}
+	far := m.Cluster.Sub(w.vertex()).Dot(n)
+	if !(far > 0) {
+		m.Origin = nowhere()
+		return
+	}
+	m.Origin = m.Cluster.Sub(n.Scale(far))
 }
 
 // loadMerged sets a product by a cluster of merged photons: the momentum p' of size

@@ -107,7 +107,7 @@ func TestFitsOfTrueAssignments(t *testing.T) {
 			if c.tracked {
 				config = withTracks(config)
 			}
-			s := simulateFrom(t, h.Reaction, config, c.initial, events)
+			s := simulateFrom(t, h.Reaction, config, generation.Config{Initial: c.initial}, events)
 			w := compile(t, h).NewWorker(selection.AllEntries)
 			var probabilities []float64
 			pulls := map[string]*moments{}

@@ -82,7 +82,9 @@ func (Conservation) EnumDescriptor() ([]byte, []int) {
 
 // VertexTreatment is what a fit knows of the event vertex along z. Across z the
 // vertex is taken as exact. The direction of a photon with a cluster position
-// follows the vertex; other directions do not.
+// follows the vertex, whether it was given as seen from the vertex, from where the
+// photon was born or from the centre of the detector: the cluster is where it is.
+// Other directions do not follow.
 type VertexTreatment int32
 
 const (
