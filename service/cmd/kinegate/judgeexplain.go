@@ -48,15 +48,15 @@ func (j *judgeRun) explainEvent(
 		if err != nil {
 			return err
 		}
-		return j.tell(reply, func() error { return j.printExplanation(reply) })
+		return j.tell(reply, func() error { return j.printExplanation(reply, j.checked.GetSelection()) })
 	}
 }
 
 // printExplanation prints why an event was judged as it was.
-func (e *environment) printExplanation(r *kinegatev1.ExplainVerdictResponse) error {
+func (e *environment) printExplanation(r *kinegatev1.ExplainVerdictResponse, of *kinegatev1.Selection) error {
 	e.print("event %d: %s; the gate %s", r.GetEventId(), words(r.GetStatus().String(), "EVENT_STATUS_"),
 		map[bool]string{true: "accepts it", false: "does not accept it"}[r.GetGate()])
-	for _, h := range r.GetHypotheses() {
+	for k, h := range r.GetHypotheses() {
 		e.print("")
 		e.print("hypothesis %s: %s", h.GetName(), h.GetReaction())
 		verdict := map[bool]string{true: "accepts the event", false: "does not accept the event"}[h.GetAccepted()]
@@ -69,7 +69,7 @@ func (e *environment) printExplanation(r *kinegatev1.ExplainVerdictResponse) err
 		}
 		e.print("  %s; %s tried, %d shown", verdict, plural(h.GetAssignmentCount(), "assignment"), len(h.GetAssignments()))
 		for i, a := range h.GetAssignments() {
-			if err := e.printAssignment(h, i, a); err != nil {
+			if err := e.printAssignment(h, of.GetHypotheses()[k].GetCondition(), i, a); err != nil {
 				return err
 			}
 		}
@@ -90,7 +90,9 @@ func words(name, prefix string) string {
 }
 
 // printAssignment prints one assignment.
-func (e *environment) printAssignment(h *kinegatev1.HypothesisExplanation, i int, a *kinegatev1.AssignmentExplanation) error {
+func (e *environment) printAssignment(
+	h *kinegatev1.HypothesisExplanation, condition *kinegatev1.Condition, i int, a *kinegatev1.AssignmentExplanation,
+) error {
 	e.print("")
 	var objects []string
 	for k, object := range a.GetObjects() {
@@ -117,6 +119,9 @@ func (e *environment) printAssignment(h *kinegatev1.HypothesisExplanation, i int
 	e.print("  assignment %d: %s", i+1, outcome)
 	if len(objects) > 0 {
 		e.print("    objects %s", strings.Join(objects, " "))
+	}
+	if why := unmet(condition, a); why != "" {
+		e.print("    %s", why)
 	}
 	if err := e.printWindows(a.GetWindows()); err != nil {
 		return err

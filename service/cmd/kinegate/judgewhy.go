@@ -68,7 +68,7 @@ func (r *reasons) ask(ctx context.Context, j *judgeRun, client *kinegate.Client)
 			}
 			r.asked++
 			for h, x := range reply.GetHypotheses() {
-				r.counts[h][reasonAgainst(x)]++
+				r.counts[h][reasonAgainst(x, j.checked.GetSelection().GetHypotheses()[h].GetCondition())]++
 			}
 			for h := len(reply.GetHypotheses()); h < len(r.counts); h++ {
 				r.counts[h]["not judged: "+words(reply.GetStatus().String(), "EVENT_STATUS_")]++
@@ -80,7 +80,7 @@ func (r *reasons) ask(ctx context.Context, j *judgeRun, client *kinegate.Client)
 
 // reasonAgainst says in a clause what kept an event from a hypothesis: of the assignment that
 // came furthest, where there was one.
-func reasonAgainst(h *kinegatev1.HypothesisExplanation) string {
+func reasonAgainst(h *kinegatev1.HypothesisExplanation, condition *kinegatev1.Condition) string {
 	switch {
 	case h.GetAccepted():
 		return "accepted, and left out by the prescale"
@@ -90,18 +90,78 @@ func reasonAgainst(h *kinegatev1.HypothesisExplanation) string {
 		return "no assignment: no choice of objects fits the products"
 	}
 	a := h.GetAssignments()[0]
-	for _, w := range a.GetWindows() {
-		if !w.GetInside() && !strings.HasPrefix(w.GetPath(), "record[") {
-			return "condition not met: outside the window on " + w.GetLabel()
-		}
-	}
+	// A fit is made where all but the windows on it hold, and without one they say nothing.
 	if s := a.GetFit().GetStatus(); a.GetFit() != nil && s != kinegatev1.FitStatus_FIT_STATUS_CONVERGED {
 		return "fit failed: " + words(s.String(), "FIT_STATUS_")
+	}
+	if why := unmet(condition, a); why != "" {
+		return why
 	}
 	if !a.GetComplete() {
 		return "no assignment: no choice of objects fits the products"
 	}
 	return "condition not met"
+}
+
+// unmet says in a clause which windows keep an assignment from meeting the condition; empty
+// where it meets it, or where the windows that were looked at do not tell.
+func unmet(condition *kinegatev1.Condition, a *kinegatev1.AssignmentExplanation) string {
+	if condition == nil {
+		return ""
+	}
+	windows := map[string]*kinegatev1.WindowExplanation{}
+	for _, w := range a.GetWindows() {
+		windows[w.GetPath()] = w
+	}
+	if answer, why := meets(condition, "condition", windows); answer == no {
+		return "condition not met: " + why
+	}
+	return ""
+}
+
+// What is known of a condition.
+type known int
+
+const (
+	no   known = -1
+	open known = 0
+	yes  known = 1
+)
+
+// meets tells whether a part of the condition holds, and the windows that make it so.
+func meets(c *kinegatev1.Condition, path string, windows map[string]*kinegatev1.WindowExplanation) (answer known, why string) {
+	// One member decides for any_of if it holds and for all_of if it does not; for the
+	// other answer it takes them all.
+	members, name, decides := c.GetAnyOf(), "any_of", yes
+	switch {
+	case c.GetWindow() != nil:
+		w := windows[path+".window"]
+		switch {
+		case w == nil:
+			return open, ""
+		case w.GetInside():
+			return yes, "inside the window on " + w.GetLabel()
+		}
+		return no, "outside the window on " + w.GetLabel()
+	case c.GetNot() != nil:
+		answer, why = meets(c.GetNot(), path+".not", windows)
+		return -answer, why
+	case len(c.GetAllOf()) > 0:
+		members, name, decides = c.GetAllOf(), "all_of", no
+	}
+	answer = -decides
+	var all []string
+	for i, member := range members {
+		one, because := meets(member, fmt.Sprintf("%s.%s[%d]", path, name, i), windows)
+		if one == decides {
+			return decides, because
+		}
+		if one == open {
+			answer = open
+		}
+		all = append(all, because)
+	}
+	return answer, strings.Join(all, " and ")
 }
 
 // write prints the reasons of the hypotheses that accept nothing.
