@@ -177,6 +177,8 @@ class JudgeStream::Runner {
         queue_->End(failed);
         Close();
       }
+      // Before Finish may return: what the handler holds is the caller's.
+      answer.reset();
       queue_->Taken();
     }
   }
@@ -203,16 +205,15 @@ class JudgeStream::Runner {
   v1::JudgeOpened opened_;
   std::shared_ptr<Queue> queue_;
   std::atomic<std::int64_t> break_count_{0};
-  std::atomic<milliseconds> stuck_;
 
   std::mutex mutex_;  // guards link_ against Close, and closed_
   std::condition_variable changed_;
   std::shared_ptr<Link> link_;
   bool closed_ = false;
 
-  // When the stream broke for the first time since it last went well; used by run_ alone.
+  // Used by run_ alone. broken_ is when the stream broke for the first time since it last went well.
   std::optional<Clock::time_point> broken_;
-  milliseconds backoff_{0};
+  milliseconds stuck_, backoff_{0};
   std::mt19937 random_{std::random_device()()};
 
   std::thread run_, deliver_;

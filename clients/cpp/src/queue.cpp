@@ -41,13 +41,11 @@ std::optional<std::int64_t> Queue::Push(Ask ask, bool wait) {
   if (ended_) throw why_ ? *why_ : Error("the stream was closed", grpc::StatusCode::CANCELLED);
   if (finished_) throw Error("a block after Finish", grpc::StatusCode::FAILED_PRECONDITION);
   if (!open()) return std::nullopt;
-  auto pending = std::make_shared<Pending>();
+  auto frame = std::make_shared<v1::JudgeRequest>();
   ask.block->set_sequence(next_);
-  *pending->frame.mutable_block() = std::move(*ask.block);
-  pending->byte_count = static_cast<std::int64_t>(pending->frame.block().ByteSizeLong());
-  pending->handler = std::move(ask.handler);
-  pending->failed = std::move(ask.failed);
-  waiting_.push_back(std::move(pending));
+  *frame->mutable_block() = std::move(*ask.block);
+  const auto byte_count = static_cast<std::int64_t>(frame->block().ByteSizeLong());
+  waiting_.push_back({std::move(frame), byte_count, std::move(ask.handler), std::move(ask.failed)});
   work_.notify_all();
   return next_++;
 }
@@ -103,12 +101,12 @@ Queue::Next Queue::WaitNext(std::int64_t turn, Clock::time_point until) {
   while (true) {
     if (turn != turn_ || interrupted_) return {Step::kOver, nullptr, LastAnswered()};
     if (finished_ && sent_ == waiting_.size()) return {Step::kFinish, nullptr, LastAnswered()};
-    if (sent_ < waiting_.size() && !draining_ && Affords(*waiting_[sent_])) {
-      const std::shared_ptr<Pending>& next = waiting_[sent_];
+    if (sent_ < waiting_.size() && !draining_ && Affords(waiting_[sent_])) {
+      const Pending& next = waiting_[sent_];
       if (sent_ == 0) progress_ = Clock::now();
       ++sent_;
-      sent_bytes_ += next->byte_count;
-      return {Step::kBlock, std::shared_ptr<const v1::JudgeRequest>(next, &next->frame), LastAnswered()};
+      sent_bytes_ += next.byte_count;
+      return {Step::kBlock, next.frame, LastAnswered()};
     }
     if (work_.wait_until(lock, until) == std::cv_status::timeout) {
       return {Step::kWait, nullptr, LastAnswered()};
@@ -121,23 +119,23 @@ void Queue::Settle(std::int64_t turn, v1::VerdictBlock block) {
   Verdicts verdicts(std::move(block));
   const std::lock_guard lock(mutex_);
   if (turn != turn_) return;
-  if (sent_ == 0 || verdicts.sequence() != waiting_.front()->frame.block().sequence()) {
+  if (sent_ == 0 || verdicts.sequence() != waiting_.front().frame->block().sequence()) {
     throw Error("verdict " + std::to_string(verdicts.sequence()) + " was not due");
   }
-  const std::size_t events = waiting_.front()->frame.block().event_ids().size() / sizeof(std::int64_t);
+  const std::size_t events = waiting_.front().frame->block().event_ids().size() / sizeof(std::int64_t);
   if (!verdicts.rejected() && verdicts.event_count() != events) {
     throw Error("verdict " + std::to_string(verdicts.sequence()) + " answers " +
                 std::to_string(verdicts.event_count()) + " events where " + std::to_string(events) +
                 " are due");
   }
-  const std::shared_ptr<Pending> oldest = std::move(waiting_.front());
+  Pending oldest = std::move(waiting_.front());
   waiting_.pop_front();
   --sent_;
-  sent_bytes_ -= oldest->byte_count;
+  sent_bytes_ -= oldest.byte_count;
   late_count_ += late;
   progress_ = Clock::now();
   ++handling_;
-  answered_.push_back({std::move(verdicts), std::move(oldest->handler)});
+  answered_.push_back({std::move(verdicts), std::move(oldest.handler)});
   answers_.notify_one();
   work_.notify_all();
 }
@@ -183,7 +181,7 @@ void Queue::Taken() {
 }
 
 void Queue::End(std::optional<Error> why) {
-  std::deque<std::shared_ptr<Pending>> unanswered;
+  std::deque<Pending> unanswered;
   {
     const std::lock_guard lock(mutex_);
     if (!why_) why_ = why;
@@ -197,8 +195,8 @@ void Queue::End(std::optional<Error> why) {
     over_.notify_all();
   }
   const Error error = why ? *why : Error("the stream was closed", grpc::StatusCode::CANCELLED);
-  for (const auto& pending : unanswered) {
-    if (pending->failed) pending->failed(error);
+  for (const Pending& pending : unanswered) {
+    if (pending.failed) pending.failed(error);
   }
 }
 

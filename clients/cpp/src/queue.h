@@ -64,7 +64,8 @@ class Queue {
   // Interrupt says that it is over.
   void Interrupt(std::int64_t turn);
 
-  // What a connection is to do next. A frame stays valid after its verdict.
+  // What a connection is to do next. A frame stays valid after its verdict and the queue's end: one
+  // that is being sent may outlive both.
   enum class Step { kBlock, kWait, kFinish, kOver };
   struct Next {
     Step step;
@@ -95,9 +96,11 @@ class Queue {
   void End(std::optional<Error> why);
 
  private:
+  // Pending is a block without a verdict. A sender shares its frame alone: what the caller gave
+  // goes with the queue.
   struct Pending {
-    v1::JudgeRequest frame;
-    std::int64_t byte_count = 0;
+    std::shared_ptr<const v1::JudgeRequest> frame;
+    std::int64_t byte_count;
     JudgeStream::Handler handler;
     std::function<void(const Error&)> failed;
   };
@@ -109,7 +112,7 @@ class Queue {
 
   mutable std::mutex mutex_;
   std::condition_variable room_, work_, answers_, over_;
-  std::deque<std::shared_ptr<Pending>> waiting_;  // without a verdict, oldest first
+  std::deque<Pending> waiting_;  // oldest first
   std::deque<Answer> answered_;
   std::size_t handling_ = 0;  // answers not Taken, those in answered_ included
   std::size_t limit_ = 0;

@@ -199,6 +199,34 @@ TEST(JudgeStream, CloseEndsAtOnceAndFuturesTell) {
   EXPECT_LT(std::chrono::steady_clock::now() - begun, std::chrono::seconds(1));
 }
 
+// Handlers hold what the caller gave them, which may refer to what is gone by the next line.
+TEST(JudgeStream, AfterFinishNoHandlerIsLeft) {
+  Server server;
+  const Sample sample(10);
+  JudgeStream stream(Gate(server.address()), OpenWith(PairSelection()));
+  std::atomic<bool> gone{false};
+  const auto leave = [&gone](const int*) {
+    std::this_thread::sleep_for(milliseconds(100));
+    gone = true;
+  };
+  stream.Push(MakeBlock(sample.arrays()), [held = std::shared_ptr<int>(nullptr, leave)](const Verdicts&) {});
+  stream.Finish();
+  EXPECT_TRUE(gone);
+}
+
+TEST(JudgeStream, AfterTheStreamNoHandlerIsLeftThoughItsBlockIsStillBeingSent) {
+  Server server;
+  const Sample sample(20'000);
+  auto stream = std::make_unique<JudgeStream>(Gate(server.address()), OpenWith(PairSelection()));
+  server.Freeze();
+  const auto held = std::make_shared<int>();
+  // More bytes than the buffers between here and a frozen server hold.
+  stream->Push(MakeBlock(sample.arrays()), [held](const Verdicts&) {});
+  std::this_thread::sleep_for(milliseconds(300));
+  stream.reset();
+  EXPECT_EQ(held.use_count(), 1);
+}
+
 // MakeCertificates makes an authority and a pair for each of "server" and "client".
 bool MakeCertificates(const Folder& folder) {
   const std::string quiet =

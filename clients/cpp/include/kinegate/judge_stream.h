@@ -88,8 +88,8 @@ class JudgeStream {
   // is then.
   bool TryPush(v1::EventBlock& block, Handler handler);
 
-  // Finish says that no more blocks will come, and returns when every handler has run. Throws Error
-  // where the stream ended before.
+  // Finish says that no more blocks will come, and returns when every handler has run and is gone.
+  // Throws Error where the stream ended before.
   void Finish();
   // Close ends the stream at once: blocks without a verdict get none.
   void Close();
