@@ -30,8 +30,4 @@ target_include_directories(kinegate_stubs SYSTEM PUBLIC
   $<BUILD_INTERFACE:${kinegate_stubs_dir}>
   $<INSTALL_INTERFACE:${CMAKE_INSTALL_INCLUDEDIR}>
 )
-if(KINEGATE_SANITIZE)
-  # Generated code is not what the sanitizers are for, and they double the time to compile it.
-  target_compile_options(kinegate_stubs PRIVATE -fno-sanitize=all)
-endif()
 target_link_libraries(kinegate_stubs PUBLIC gRPC::grpc++ protobuf::libprotobuf)
