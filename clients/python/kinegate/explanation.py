@@ -45,17 +45,9 @@ class WindowExplanation:
 
 @dataclass(frozen=True)
 class Pull:
-    """One measured parameter of a fit.
+    """One measured parameter of a fit, here of two ``photons`` bound to the mass of a pi0.
 
-    >>> pions = {"name": "pions", "hypotheses": [{
-    ...     "name": "pi0", "reaction": "pi0 -> gamma gamma",
-    ...     "fit": {"masses": [
-    ...         {"products": ["gamma[0]", "gamma[1]"], "mass_gev": 0.1349768}]}}]}
-    >>> events = kinegate.Events.of(
-    ...     momentum_gev=[[0.31, 0.24]], theta_rad=[[0.30, 0.70]], phi_rad=[[0.0, 0.3]],
-    ...     classes=[kinegate.PHOTON, kinegate.PHOTON],
-    ...     covariance=np.tile([1e-4, 0, 0, 1e-4, 0, 1e-3], (2, 1)))
-    >>> pull = client.explain(events, pions).hypotheses["pi0"].best.pulls[0]
+    >>> pull = client.explain(photons, pions).hypotheses["pi0"].best.pulls[0]
     >>> pull.particle, pull.parameter, abs(pull.pull) < 5
     ('gamma[0]', 'momentum', True)
     """
@@ -79,15 +71,9 @@ class Pull:
 class Assignment:
     """One assignment of objects to products, with one beam candidate.
 
-    >>> pions = {"name": "pions", "hypotheses": [{
-    ...     "name": "pi0", "reaction": "pi0 -> gamma gamma",
-    ...     "fit": {"masses": [
-    ...         {"products": ["gamma[0]", "gamma[1]"], "mass_gev": 0.1349768}]}}]}
-    >>> events = kinegate.Events.of(
-    ...     momentum_gev=[[0.31, 0.24]], theta_rad=[[0.30, 0.70]], phi_rad=[[0.0, 0.3]],
-    ...     classes=[kinegate.PHOTON, kinegate.PHOTON],
-    ...     covariance=np.tile([1e-4, 0, 0, 1e-4, 0, 1e-3], (2, 1)))
-    >>> best = client.explain(events, pions).hypotheses["pi0"].best
+    Here it is two ``photons``, which ``pions`` binds to the mass of a pi0.
+
+    >>> best = client.explain(photons, pions).hypotheses["pi0"].best
     >>> best.objects, best.fit_status
     ({'gamma[0]': 0, 'gamma[1]': 1}, 'CONVERGED')
     >>> energy, *momentum = np.add(best.fitted["gamma[0]"], best.fitted["gamma[1]"])

@@ -215,17 +215,11 @@ def absorption(field: PhotonField, label: str = "", axes: Any = None) -> Any:
     >>> kinegate.plot.absorption(field).get_yscale()
     'log'
     """
-    axes = _axes(axes)
     paths = field.mean_free_path / _METRES_PER_KPC
     seen = np.isfinite(paths)
-    axes.plot(field.energies[seen], paths[seen], label=label or None)
-    axes.set_xscale("log")
-    axes.set_yscale("log")
-    axes.set_xlabel("photon energy (GeV)")
-    axes.set_ylabel("mean free path (kpc)")
-    if label:
-        axes.legend(frameon=False)
-    return axes
+    names = {"xlabel": "photon energy (GeV)", "ylabel": "mean free path (kpc)"}
+    scales = {"xscale": "log", "yscale": "log"}
+    return _line(axes, field.energies[seen], paths[seen], label, **names, **scales)
 
 
 def spectrum(beam: Backscatter, label: str = "", axes: Any = None) -> Any:
@@ -240,14 +234,8 @@ def spectrum(beam: Backscatter, label: str = "", axes: Any = None) -> Any:
     >>> kinegate.plot.spectrum(beam).get_xlabel()
     'photon energy (GeV)'
     """
-    axes = _axes(axes)
-    axes.plot(beam.energies, beam.spectrum, label=label or None)
-    axes.set_ylim(bottom=0)
-    axes.set_xlabel("photon energy (GeV)")
-    axes.set_ylabel("cross-section (barn/GeV)")
-    if label:
-        axes.legend(frameon=False)
-    return axes
+    names = {"xlabel": "photon energy (GeV)", "ylabel": "cross-section (barn/GeV)"}
+    return _line(axes, beam.energies, beam.spectrum, label, ylim=(0, None), **names)
 
 
 def scattering(answer: Compton, label: str = "", axes: Any = None) -> Any:
@@ -262,14 +250,9 @@ def scattering(answer: Compton, label: str = "", axes: Any = None) -> Any:
     >>> kinegate.plot.scattering(answer).get_xlabel()
     'angle of the photon (deg)'
     """
-    axes = _axes(axes)
-    axes.plot(answer.angles / DEGREE, answer.differential * 1e3, label=label or None)
-    axes.set_ylim(bottom=0)
-    axes.set_xlabel("angle of the photon (deg)")
-    axes.set_ylabel("cross-section (mb/sr)")
-    if label:
-        axes.legend(frameon=False)
-    return axes
+    names = {"xlabel": "angle of the photon (deg)", "ylabel": "cross-section (mb/sr)"}
+    degrees = answer.angles / DEGREE
+    return _line(axes, degrees, answer.differential * 1e3, label, ylim=(0, None), **names)
 
 
 def acceptance(detector: DetectorCheck, axes: Any = None) -> Any:
@@ -296,6 +279,17 @@ def _axes(axes: Any, height: float = 4.0) -> Any:
     if axes is not None:
         return axes
     _, axes = needed("matplotlib.pyplot").subplots(figsize=(6.4, height), layout="constrained")
+    return axes
+
+
+def _line(
+    axes: Any, x: NDArray[np.float64], y: NDArray[np.float64], label: str, **settings: Any
+) -> Any:
+    axes = _axes(axes)
+    axes.plot(x, y, label=label or None)
+    axes.set(**settings)
+    if label:
+        axes.legend(frameon=False)
     return axes
 
 

@@ -25,15 +25,9 @@ __all__ = ["Pulls", "of_best"]
 class Pulls:
     """Pulls of the best assignment of each event; they should follow the unit normal.
 
-    >>> pions = {"name": "pions", "hypotheses": [{
-    ...     "name": "pi0", "reaction": "pi0 -> gamma gamma",
-    ...     "fit": {"masses": [
-    ...         {"products": ["gamma[0]", "gamma[1]"], "mass_gev": 0.1349768}]}}]}
-    >>> events = kinegate.Events.of(
-    ...     momentum_gev=[[0.31, 0.24]], theta_rad=[[0.30, 0.70]], phi_rad=[[0.0, 0.3]],
-    ...     classes=[kinegate.PHOTON, kinegate.PHOTON],
-    ...     covariance=np.tile([1e-4, 0, 0, 1e-4, 0, 1e-3], (2, 1)))
-    >>> pulls = client.pulls(events, pions, "pi0")
+    Here there is one event of two ``photons``, which ``pions`` binds to the mass of a pi0.
+
+    >>> pulls = client.pulls(photons, pions, "pi0")
     >>> list(pulls.columns)[:3], pulls.columns["gamma[0] theta"].shape
     (['gamma[0] momentum', 'gamma[0] theta', 'gamma[0] phi'], (1,))
     """

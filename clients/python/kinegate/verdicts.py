@@ -113,15 +113,9 @@ class Observable:
 class Fits:
     """The fits of a hypothesis: one row for each of its entries.
 
-    >>> pions = {"name": "pions", "hypotheses": [{
-    ...     "name": "pi0", "reaction": "pi0 -> gamma gamma",
-    ...     "fit": {"masses": [
-    ...         {"products": ["gamma[0]", "gamma[1]"], "mass_gev": 0.1349768}]}}]}
-    >>> events = kinegate.Events.of(
-    ...     momentum_gev=[[0.31, 0.24]], theta_rad=[[0.30, 0.70]], phi_rad=[[0.0, 0.3]],
-    ...     classes=[kinegate.PHOTON, kinegate.PHOTON],
-    ...     covariance=np.tile([1e-4, 0, 0, 1e-4, 0, 1e-3], (2, 1)))
-    >>> fits = client.judge_block(events, pions).fits("pi0")
+    Here there is one, of two ``photons``, which ``pions`` binds to the mass of a pi0.
+
+    >>> fits = client.judge_block(photons, pions).fits("pi0")
     >>> fits.degrees_of_freedom, fits.converged, bool(0 < fits.probability[0] < 1)
     (array([1], dtype=int16), array([ True]), True)
     """

@@ -27,7 +27,8 @@ def main(method: str) -> None:
     print(server.process.pid, flush=True)  # noqa: T201
     with warnings.catch_warnings():
         warnings.simplefilter("ignore")  # a fork with threads: this child makes no calls
-        multiprocessing.get_context(method).Process(target=live).start()
+        multiprocessing.set_start_method(method)
+        multiprocessing.Process(target=live).start()
     time.sleep(60)
 
 
