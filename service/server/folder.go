@@ -33,24 +33,34 @@ type folder struct {
 	library *api.Library
 	metrics *telemetry.Metrics
 	log     func() *zerolog.Logger
+	// taken are the names that selection files have, which no file of the folder may have.
+	taken []string
 
-	mu sync.Mutex // guards the rest
-	// sums are the contents of the files when last read, owners the file or setting
-	// that each name belongs to, bad the files that are not in use as they are.
-	sums   map[string][sha256.Size]byte
-	owners map[string]string
-	bad    map[string]bool
+	mu    sync.Mutex // guards the rest
+	files map[string]*selectionFile
+}
+
+// selectionFile is a file of the folder as last looked at.
+type selectionFile struct {
+	// seen is the content at the last look. One that another look finds unchanged is
+	// complete, and is read: a file that is being written in place may be sound and
+	// lack its last hypotheses.
+	seen, read [sha256.Size]byte
+	// version is what was read and waits for its name to be free.
+	version *api.Version
+	// name is that of the version in use, which is the file's own until it goes or
+	// has another.
+	name string
+	// bad says why the file is not in use as it is, told what was reported of it.
+	bad, told error
 }
 
 // loadFolder reads the folder for the first time; taken are the names that selection
 // files have already. Every file must be sound.
 func loadFolder(path string, library *api.Library, taken []string, metrics *telemetry.Metrics, log func() *zerolog.Logger) (*folder, error) {
-	f := &folder{
-		path: path, library: library, metrics: metrics, log: log,
-		sums: map[string][sha256.Size]byte{}, owners: map[string]string{}, bad: map[string]bool{},
-	}
-	for _, name := range taken {
-		f.owners[name] = "selection_files"
+	f := &folder{path: path, library: library, metrics: metrics, log: log, taken: taken, files: map[string]*selectionFile{}}
+	if _, err := f.reread(); err != nil {
+		return nil, err
 	}
 	_, err := f.reread()
 	return f, err
@@ -82,36 +92,46 @@ func (f *folder) refresh() {
 }
 
 // reread takes all files that have changed and are sound into use at once. Bad ones are
-// reported when they have changed and keep the metric down until they are mended.
+// reported once and keep the metric down until they are mended.
 func (f *folder) reread() (changed []api.Version, err error) {
 	f.mu.Lock()
 	defer f.mu.Unlock()
-	files, err := f.files()
+	paths, err := f.paths()
 	if err != nil {
 		f.metrics.SelectionsReloaded(false)
 		return nil, badFile("selection_folder", f.path, "a folder that can be read", err)
 	}
-	maps.DeleteFunc(f.bad, func(path string, _ bool) bool { return !slices.Contains(files, path) })
-	maps.DeleteFunc(f.sums, func(path string, _ [sha256.Size]byte) bool { return !slices.Contains(files, path) })
+	maps.DeleteFunc(f.files, func(path string, _ *selectionFile) bool { return !slices.Contains(paths, path) })
+	for _, path := range paths {
+		if f.files[path] == nil {
+			f.files[path] = &selectionFile{}
+		}
+		f.look(path, f.files[path])
+	}
 	var faults []error
-	for _, path := range files {
-		version, news, err := f.read(path)
-		switch {
-		case err != nil:
-			f.bad[path] = true
-			faults = append(faults, fmt.Errorf("%s: %w", path, err))
-		case news:
-			delete(f.bad, path)
-			changed = append(changed, version)
+	sound := true
+	for _, path := range paths {
+		file := f.files[path]
+		if version := f.claim(file); version != nil {
+			changed = append(changed, *version)
+		}
+		if file.bad == nil {
+			file.told = nil
+			continue
+		}
+		sound = false
+		if file.told == nil || file.told.Error() != file.bad.Error() {
+			file.told = file.bad
+			faults = append(faults, fmt.Errorf("%s: %w", path, file.bad))
 		}
 	}
 	f.library.Take(changed...)
-	f.metrics.SelectionsReloaded(len(f.bad) == 0)
+	f.metrics.SelectionsReloaded(sound)
 	return changed, errors.Join(faults...)
 }
 
-// files are the paths of the YAML files, sorted.
-func (f *folder) files() ([]string, error) {
+// paths are those of the YAML files, sorted.
+func (f *folder) paths() ([]string, error) {
 	entries, err := os.ReadDir(f.path)
 	if err != nil {
 		return nil, err //nolint:wrapcheck // it names the operation and the path
@@ -128,36 +148,52 @@ func (f *folder) files() ([]string, error) {
 	return paths, nil
 }
 
-// read reads one file; news is false for one that has not changed since.
-func (f *folder) read(path string) (version api.Version, news bool, err error) {
+// look reads a file whose content is new and complete.
+func (f *folder) look(path string, file *selectionFile) {
 	data, err := readFile("selection_folder", path)
 	if err != nil {
 		// It may be readable the next time though its content stays.
-		delete(f.sums, path)
-		return version, false, err
+		*file = selectionFile{name: file.name, bad: err, told: file.told}
+		return
 	}
 	sum := sha256.Sum256(data)
-	if old, known := f.sums[path]; known && old == sum {
-		return version, false, nil
+	complete := sum == file.seen
+	file.seen = sum
+	if !complete || sum == file.read {
+		return
 	}
-	f.sums[path] = sum
-	version, err = f.library.Read(string(data))
+	file.read, file.version, file.bad = sum, nil, nil
+	version, err := f.library.Read(string(data))
 	if err != nil {
-		return version, false, err
+		file.bad = err
+		return
 	}
-	if owner := f.owners[version.Name()]; owner != "" && owner != path && !f.gone(owner) {
-		return version, false, fault.New(fault.Invalid, "name", version.Name(), "a name that no other file has").
-			Because("it belongs to " + owner)
+	file.version = &version
+	if file.name != version.Name() {
+		file.name = ""
 	}
-	f.owners[version.Name()] = path
-	return version, true, nil
 }
 
-// gone reports whether a file that owned a name no longer exists.
-func (f *folder) gone(owner string) bool {
-	if owner == "selection_files" {
-		return false
+// claim returns the version that a file waits to bring into use, if its name is free.
+func (f *folder) claim(file *selectionFile) *api.Version {
+	version := file.version
+	if version == nil {
+		return nil
 	}
-	_, err := os.Stat(owner)
-	return errors.Is(err, os.ErrNotExist)
+	name := version.Name()
+	owner := ""
+	if slices.Contains(f.taken, name) {
+		owner = "selection_files"
+	}
+	for path, other := range f.files {
+		if other != file && other.name == name {
+			owner = path
+		}
+	}
+	if owner != "" {
+		file.bad = fault.New(fault.Invalid, "name", name, "a name that no other file has").Because("it belongs to " + owner)
+		return nil
+	}
+	file.version, file.name, file.bad = nil, name, nil
+	return version
 }

@@ -8,9 +8,14 @@ import (
 	"strings"
 	"testing"
 
+	"github.com/prometheus/client_golang/prometheus"
+	"github.com/rs/zerolog"
+
 	kinegate "example.org/kinegate/clients/go"
 	"example.org/kinegate/clients/go/history"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+	"example.org/kinegate/service/api"
+	"example.org/kinegate/service/telemetry"
 )
 
 // pairsFile is a selection file; the upper limit makes versions.
@@ -27,6 +32,12 @@ func put(t *testing.T, path string, data []byte) {
 	if err := os.Rename(path+".new", path); err != nil {
 		t.Fatal(err)
 	}
+}
+
+// settle lets the folder look twice, as it does before it takes a file.
+func settle(r *running) {
+	r.folder.refresh()
+	r.folder.refresh()
 }
 
 func namedPairs(follow bool) *kinegatev1.JudgeOpen {
@@ -50,7 +61,7 @@ func TestReloadMidStream(t *testing.T) {
 	reload := func(from int) {
 		if from == events/2 {
 			put(t, file, pairsFile("pairs", 0.2))
-			r.folder.refresh()
+			settle(r)
 			l.cut()
 		}
 	}
@@ -64,7 +75,7 @@ func TestReloadMidStream(t *testing.T) {
 	}
 	// Back to the first version for the one that follows.
 	put(t, file, pairsFile("pairs", 0.16))
-	r.folder.refresh()
+	settle(r)
 	var order []string
 	verify(t, follower, history.Run{
 		Client: r.client(t), Open: namedPairs(true), Events: events / 2, PerBlock: perBlock,
@@ -83,7 +94,7 @@ func TestReloadMidStream(t *testing.T) {
 	for i := range 10 {
 		if i == 5 {
 			put(t, file, pairsFile("pairs", 0.2))
-			r.folder.refresh()
+			settle(r)
 		}
 		if err := stream.Send(history.Photons(i*perBlock, perBlock)); err != nil {
 			t.Fatal(err)
@@ -124,7 +135,7 @@ func TestBadFilesKeepTheOldVersion(t *testing.T) {
 	}
 	step := func(what string, good float64, names ...string) {
 		t.Helper()
-		r.folder.refresh()
+		settle(r)
 		if got := r.metric(t, "kinegate_selection_reload_success"); got != good {
 			t.Errorf("%s: metric %v", what, got)
 		}
@@ -153,6 +164,82 @@ func TestBadFilesKeepTheOldVersion(t *testing.T) {
 		t.Fatal(err)
 	}
 	step("a file gone", 1, "others 1", "pairs 2")
+}
+
+// unwatched is a folder that is looked at by the test alone.
+func unwatched(t *testing.T, path string) *folder {
+	t.Helper()
+	table, err := loadTable(nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	metrics, err := telemetry.NewMetrics(prometheus.NewRegistry(), "test")
+	if err != nil {
+		t.Fatal(err)
+	}
+	log := zerolog.Nop()
+	f, err := loadFolder(path, api.NewLibrary(table), nil, metrics, func() *zerolog.Logger { return &log })
+	if err != nil {
+		t.Fatal(err)
+	}
+	return f
+}
+
+// TestFileThatIsBeingWritten: the first part of a file may be a sound selection without
+// its last hypothesis, and is not taken.
+func TestFileThatIsBeingWritten(t *testing.T) {
+	path := t.TempDir()
+	file := filepath.Join(path, "pairs.yaml")
+	part := pairsFile("pairs", 0.16)
+	whole := slices.Concat(part, []byte("  - name: all\n    reaction: \"pi0 -> gamma gamma\"\n    role: ROLE_VETO\n"))
+	writeFile(t, file, whole)
+	f := unwatched(t, path)
+	look := func(what string, taken int) {
+		t.Helper()
+		if changed, err := f.reread(); err != nil || len(changed) != taken {
+			t.Errorf("%s: %d versions are taken, error %v", what, len(changed), err)
+		}
+	}
+	writeFile(t, file, part)
+	look("half written", 0)
+	writeFile(t, file, slices.Concat(whole, []byte("\n")))
+	look("written", 0)
+	look("unchanged since", 1)
+	look("known", 0)
+}
+
+// TestNamesOfFiles: a name is a file's own only while the file has it.
+func TestNamesOfFiles(t *testing.T) {
+	path := t.TempDir()
+	a, b := filepath.Join(path, "a.yaml"), filepath.Join(path, "b.yaml")
+	put(t, a, pairsFile("day", 0.16))
+	f := unwatched(t, path)
+	step := func(what string, names map[string]string) {
+		t.Helper()
+		for range 2 {
+			if _, err := f.reread(); err != nil {
+				t.Log(what, err)
+			}
+		}
+		for file, name := range names {
+			if got := f.files[file]; got.name != name || (got.bad == nil) != (name != "") {
+				t.Errorf("%s: %s has the name %q, want %q; %v", what, file, got.name, name, got.bad)
+			}
+		}
+	}
+	put(t, b, pairsFile("day", 0.17))
+	step("a name twice", map[string]string{a: "day", b: ""})
+	put(t, a, pairsFile("night", 0.16))
+	step("the first has another name", map[string]string{a: "night", b: "day"})
+	put(t, a, pairsFile("day", 0.16))
+	put(t, b, pairsFile("night", 0.17))
+	step("names changed for each other", map[string]string{a: "day", b: "night"})
+	put(t, b, pairsFile("day", 0.17))
+	step("twice again", map[string]string{a: "day", b: ""})
+	if err := os.Remove(a); err != nil {
+		t.Fatal(err)
+	}
+	step("the first is gone", map[string]string{b: "day"})
 }
 
 // TestBadFolderRefusesToStart names the setting.
