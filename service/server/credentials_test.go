@@ -12,6 +12,7 @@ import (
 	"net"
 	"net/url"
 	"path/filepath"
+	"slices"
 	"strings"
 	"testing"
 	"time"
@@ -259,6 +260,45 @@ func TestCertificateReload(t *testing.T) {
 	a.write(t, f)
 	if changed, err := r.certificates.reread(); !changed || err != nil || r.metric(t, "kinegate_certificate_reload_success") != 1 {
 		t.Errorf("sound files again: %v %v", changed, err)
+	}
+}
+
+// TestClientAuthorityReload swaps the authority of callers: who was let in before is not
+// any more, and the other way round; a bad file keeps the old one.
+func TestClientAuthorityReload(t *testing.T) {
+	a, next := newAuthority(t), newAuthority(t)
+	f := a.files(t)
+	r := start(t, onSockets, f.mutual)
+	chain, key := a.issue(t, "spiffe://example.org/trigger", time.Hour)
+	nextChain, nextKey := next.issue(t, "spiffe://example.org/trigger", time.Hour)
+	step := func(what string, old, renewed bool) {
+		t.Helper()
+		for caller, c := range map[string]struct {
+			creds *tls.Config
+			in    bool
+		}{"old": {a.trusting(t, chain, key), old}, "new": {a.trusting(t, nextChain, nextKey), renewed}} {
+			if err := info(t, r.Addr(General).String(), credentials.NewTLS(c.creds)); (err == nil) != c.in {
+				t.Errorf("%s: the caller of the %s authority: %v", what, caller, err)
+			}
+		}
+	}
+	step("start", true, false)
+	for _, c := range []struct {
+		what         string
+		authorities  []byte
+		sound        bool
+		old, renewed bool
+	}{
+		{"both authorities", slices.Concat(a.pem, next.pem), true, true, true},
+		{"the new one alone", next.pem, true, false, true},
+		{"garbage", []byte("x"), false, false, true},
+		{"the old one again", a.pem, true, true, false},
+	} {
+		writeFile(t, f.clientCA, c.authorities)
+		if changed, err := r.certificates.reread(); changed != c.sound || (err == nil) != c.sound {
+			t.Errorf("%s: %v %v", c.what, changed, err)
+		}
+		step(c.what, c.old, c.renewed)
 	}
 }
 
