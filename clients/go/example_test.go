@@ -45,7 +45,7 @@ func startServer() (general, gate string, stop func()) {
 
 // pions accepts pairs of photons with about the mass of a neutral pion.
 func pions() *kinegatev1.SelectionSource {
-	return &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: &kinegatev1.Selection{
+	return &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Given{Given: &kinegatev1.Selection{
 		Name: "pions",
 		Hypotheses: []*kinegatev1.Hypothesis{{
 			Name: "pi0", Reaction: "pi0 -> gamma gamma",

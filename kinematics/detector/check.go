@@ -99,11 +99,11 @@ func (d *Tracker) check(l *checker) {
 	sums := map[uint8]float64{}
 	for i, c := range d.Confusions {
 		at := "tracker.confusions[" + strconv.Itoa(i) + "]"
-		l.species(at+".from", c.From)
-		l.species(at+".to", c.To)
+		l.species(at+".species", c.Species)
+		l.species(at+".taken_for", c.TakenFor)
 		l.probability(at+".probability", c.Probability)
-		sums[c.From] += c.Probability
-		if sums[c.From] > 1 {
+		sums[c.Species] += c.Probability
+		if sums[c.Species] > 1 {
 			l.number(at+".probability", c.Probability, "at most 1 over all confusions of one species")
 		}
 	}

@@ -111,8 +111,8 @@ type Tracker struct {
 // Confusion is a species taken for another, with a probability. The species are
 // single bits of the species mask.
 type Confusion struct {
-	From, To    uint8
-	Probability float64
+	Species, TakenFor uint8
+	Probability       float64
 }
 
 // Recoil finds the direction, and nothing else, of protons in events that hold

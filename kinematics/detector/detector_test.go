@@ -36,8 +36,8 @@ func hall() detector.Config {
 			Theta: detector.Polar{MinRad: 10 * degree, MaxRad: 140 * degree}, MomentumMinGeV: 0.15,
 			Constant: 0.015, PerGeV: 0.01, AngleSigmaRad: 0.003, Efficiency: 0.92, Identify: true,
 			Confusions: []detector.Confusion{
-				{From: event.SpeciesProton, To: event.SpeciesPion, Probability: 0.05},
-				{From: event.SpeciesPion, To: event.SpeciesProton, Probability: 0.05},
+				{Species: event.SpeciesProton, TakenFor: event.SpeciesPion, Probability: 0.05},
+				{Species: event.SpeciesPion, TakenFor: event.SpeciesProton, Probability: 0.05},
 			},
 		},
 		Recoil: &detector.Recoil{
@@ -399,8 +399,8 @@ func TestValidateListsEveryFault(t *testing.T) {
 	c.Calorimeter.ThresholdGeV = math.NaN()
 	c.Calorimeter.SplitOff.MaxShare = 0.01
 	c.Tracker.AngleSigmaRad = 0
-	c.Tracker.Confusions[0].From = 3
-	c.Tracker.Confusions = append(c.Tracker.Confusions, detector.Confusion{From: event.SpeciesPion, To: event.SpeciesKaon, Probability: 0.96})
+	c.Tracker.Confusions[0].Species = 3
+	c.Tracker.Confusions = append(c.Tracker.Confusions, detector.Confusion{Species: event.SpeciesPion, TakenFor: event.SpeciesKaon, Probability: 0.96})
 	c.Recoil.Theta.MinRad = -1
 	c.Tagger.EdgesGeV[7] = 0
 	c.Vertex = &detector.Vertex{SigmaZM: math.Inf(1)}
@@ -416,7 +416,7 @@ func TestValidateListsEveryFault(t *testing.T) {
 	}
 	want := []string{
 		"calorimeter.theta.max_rad", "calorimeter.threshold_gev", "calorimeter.efficiency", "calorimeter.split_off.max_share",
-		"tracker.angle_sigma_rad", "tracker.confusions[0].from", "tracker.confusions[2].probability",
+		"tracker.angle_sigma_rad", "tracker.confusions[0].species", "tracker.confusions[2].probability",
 		"recoil.theta.min_rad", "tagger.edges_gev[7]", "vertex.sigma_z_m",
 		"displaced.distance_min_m", "displaced.sigma_z_m", "displaced.efficiency",
 	}

@@ -86,14 +86,14 @@ func (w *worker) track(p momentum.Three, class event.Class, species uint8, label
 func (w *worker) confuse(species uint8) uint8 {
 	drawn, u := false, 0.0
 	for _, c := range w.config.Tracker.Confusions {
-		if c.From != species {
+		if c.Species != species {
 			continue
 		}
 		if !drawn {
 			drawn, u = true, w.stream.Uniform()
 		}
 		if u < c.Probability {
-			return c.To
+			return c.TakenFor
 		}
 		u -= c.Probability
 	}

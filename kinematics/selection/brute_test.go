@@ -269,8 +269,8 @@ func (b *brute) holds(c *selection.Condition) bool {
 	case c.Window != nil:
 		x := b.value(c.Window)
 		return !math.IsNaN(x) && (c.Window.Min == nil || x >= *c.Window.Min) && (c.Window.Max == nil || x < *c.Window.Max)
-	case c.Not != nil:
-		return !b.holds(c.Not)
+	case c.NoneOf != nil:
+		return !slices.ContainsFunc(c.NoneOf, func(x selection.Condition) bool { return b.holds(&x) })
 	case c.AllOf != nil:
 		return !slices.ContainsFunc(c.AllOf, func(x selection.Condition) bool { return !b.holds(&x) })
 	}

@@ -7,7 +7,7 @@ const (
 	opWindow operation = iota
 	opAll
 	opAny
-	opNot
+	opNone
 )
 
 // check is a node of a compiled condition.
@@ -50,21 +50,11 @@ func (w *Worker) holds(c *check) bool {
 	case opWindow:
 		return w.inside(&c.window)
 	case opAll:
-		for i := range c.parts {
-			if !w.holds(&c.parts[i]) {
-				return false
-			}
-		}
-		return true
+		return w.all(c.parts)
 	case opAny:
-		for i := range c.parts {
-			if w.holds(&c.parts[i]) {
-				return true
-			}
-		}
-		return false
-	case opNot:
-		return !w.holds(&c.parts[0])
+		return w.any(c.parts)
+	case opNone:
+		return !w.any(c.parts)
 	}
 	return false
 }
@@ -77,6 +67,16 @@ func (w *Worker) all(checks []check) bool {
 		}
 	}
 	return true
+}
+
+// any reports whether at least one check holds.
+func (w *Worker) any(checks []check) bool {
+	for i := range checks {
+		if w.holds(&checks[i]) {
+			return true
+		}
+	}
+	return false
 }
 
 // inside reports whether the observable lies in its window. NaN, which stands for

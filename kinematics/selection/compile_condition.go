@@ -39,13 +39,13 @@ func (d *drafter) condition() {
 // check compiles a node of the condition tree.
 func (d *drafter) check(at string, c *Condition, depth int) (check, bool) {
 	members := 0
-	for _, is := range [...]bool{c.Window != nil, len(c.AllOf) > 0, len(c.AnyOf) > 0, c.Not != nil} {
+	for _, is := range [...]bool{c.Window != nil, len(c.AllOf) > 0, len(c.AnyOf) > 0, len(c.NoneOf) > 0} {
 		if is {
 			members++
 		}
 	}
 	if members != 1 {
-		d.fault(at, strconv.Itoa(members)+" members", "exactly one of window, all_of, any_of, not; lists not empty")
+		d.fault(at, strconv.Itoa(members)+" members", "exactly one of window, all_of, any_of, none_of; lists not empty")
 		return check{}, false
 	}
 	if depth > MaxNesting {
@@ -57,13 +57,12 @@ func (d *drafter) check(at string, c *Condition, depth int) (check, bool) {
 		w, ok := d.window(at+".window", c.Window, true)
 		d.show(at+".window", c.Window, &w)
 		return check{operation: opWindow, window: w}, ok
-	case c.Not != nil:
-		part, ok := d.check(at+".not", c.Not, depth+1)
-		return check{operation: opNot, parts: []check{part}}, ok
 	case len(c.AllOf) > 0:
 		return d.checks(at+".all_of", opAll, c.AllOf, depth+1)
+	case len(c.AnyOf) > 0:
+		return d.checks(at+".any_of", opAny, c.AnyOf, depth+1)
 	}
-	return d.checks(at+".any_of", opAny, c.AnyOf, depth+1)
+	return d.checks(at+".none_of", opNone, c.NoneOf, depth+1)
 }
 
 // checks compiles a list of nodes.
@@ -77,14 +76,21 @@ func (d *drafter) checks(at string, o operation, list []Condition, depth int) (c
 	return node, good
 }
 
-// conjuncts returns the parts of a conjunction, nested ones taken apart.
+// conjuncts returns the parts of a conjunction, nested ones taken apart; none of several is a
+// conjunction of as many parts.
 func conjuncts(c check) []check {
-	if c.operation != opAll {
-		return []check{c}
-	}
 	var all []check
-	for _, part := range c.parts {
-		all = append(all, conjuncts(part)...)
+	switch c.operation {
+	case opAll:
+		for _, part := range c.parts {
+			all = append(all, conjuncts(part)...)
+		}
+	case opNone:
+		for i := range c.parts {
+			all = append(all, check{operation: opNone, parts: c.parts[i : i+1]})
+		}
+	case opWindow, opAny:
+		all = []check{c}
 	}
 	return all
 }

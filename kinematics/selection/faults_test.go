@@ -129,9 +129,9 @@ func TestFaults(t *testing.T) {
 			first(s).ExtraObjects = &selection.ExtraObjects{Rule: selection.SoftPhotons, MaxCount: 1}
 		}},
 		{"empty condition", part, "exactly one", func(s *selection.Selection) { first(s).Condition.AllOf[0] = selection.Condition{} }},
-		{"two members", part, "2 members", func(s *selection.Selection) { first(s).Condition.AllOf[0].Not = &selection.Condition{} }},
-		{"nested fault", part + ".not.window.energy.products[0]", "no such product", func(s *selection.Selection) {
-			first(s).Condition.AllOf[0] = selection.Condition{Not: &selection.Condition{Window: within(selection.Energy, 0, 1, "K+")}}
+		{"two members", part, "2 members", func(s *selection.Selection) { first(s).Condition.AllOf[0].NoneOf = []selection.Condition{{}} }},
+		{"nested fault", part + ".none_of[0].window.energy.products[0]", "no such product", func(s *selection.Selection) {
+			first(s).Condition.AllOf[0] = selection.Condition{NoneOf: []selection.Condition{{Window: within(selection.Energy, 0, 1, "K+")}}}
 		}},
 		{"no observable", part + ".window", "one observable", set(&selection.Window{})},
 		{"no products", part + ".window.invariant_mass.products", "none", set(within(selection.InvariantMass, 0, 1))},

@@ -193,7 +193,7 @@ func TestFailedFits(t *testing.T) {
 	block.Covariance.Packed[0] = math.NaN()
 	block.Covariance.Packed[6*4] = -1
 	h := pionsOnly(2)
-	h.Condition = &selection.Condition{Not: &selection.Condition{Window: within(selection.FitProbability, 0.5, 0.6)}}
+	h.Condition = &selection.Condition{NoneOf: []selection.Condition{{Window: within(selection.FitProbability, 0.5, 0.6)}}}
 	out := judge(t, compile(t, h), block, selection.AllEntries)
 	for i := range block.Events() {
 		if out.Status[i] != event.Good {

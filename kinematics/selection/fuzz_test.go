@@ -92,8 +92,11 @@ func (d *dice) condition(depth int) selection.Condition {
 		w := d.usable()
 		return selection.Condition{Window: &w}
 	case n == 1:
-		part := d.condition(depth + 1)
-		return selection.Condition{Not: &part}
+		parts := make([]selection.Condition, 1+d.below(2))
+		for i := range parts {
+			parts[i] = d.condition(depth + 1)
+		}
+		return selection.Condition{NoneOf: parts}
 	case n == 2:
 		return selection.Condition{AllOf: []selection.Condition{d.condition(depth + 1), d.condition(depth + 1)}}
 	default:

@@ -137,7 +137,7 @@ func TestCentreOfMass(t *testing.T) {
 }
 
 // TestNotComputed holds the rule that what cannot be computed lies outside every
-// window, so that "not" of it holds.
+// window, so that none_of it holds.
 func TestNotComputed(t *testing.T) {
 	vertex := &selection.Window{Observable: selection.VertexZ}
 	for _, c := range []struct {
@@ -146,7 +146,11 @@ func TestNotComputed(t *testing.T) {
 		accepted  bool
 	}{
 		{"without limits", only(vertex), false},
-		{"not", selection.Condition{Not: &selection.Condition{Window: vertex}}, true},
+		{"none of", selection.Condition{NoneOf: []selection.Condition{only(vertex)}}, true},
+		{"none of two", selection.Condition{NoneOf: []selection.Condition{only(vertex), only(within(selection.Energy, 0, 9, "gamma"))}}, false},
+		{"none of two inside any of", selection.Condition{AnyOf: []selection.Condition{
+			{NoneOf: []selection.Condition{only(vertex), only(within(selection.Energy, 0, 9, "gamma"))}},
+		}}, false},
 		{"any of", selection.Condition{AnyOf: []selection.Condition{only(vertex), only(within(selection.Energy, 0, 9, "gamma"))}}, true},
 		{"all of", selection.Condition{AllOf: []selection.Condition{only(vertex), only(within(selection.Energy, 0, 9, "gamma"))}}, false},
 	} {

@@ -92,7 +92,7 @@ func everything(r *rand.Rand) selection.Selection {
 	}
 	all := func(list ...selection.Condition) *selection.Condition { return &selection.Condition{AllOf: list} }
 	anyOf := func(list ...selection.Condition) selection.Condition { return selection.Condition{AnyOf: list} }
-	not := func(c selection.Condition) selection.Condition { return selection.Condition{Not: &c} }
+	noneOf := func(list ...selection.Condition) selection.Condition { return selection.Condition{NoneOf: list} }
 	record := func(c selection.Condition, frame selection.Frame, second ...string) selection.Window {
 		w := *c.Window
 		w.Min, w.Max, w.Frame, w.Second = nil, nil, frame, second
@@ -121,7 +121,7 @@ func everything(r *rand.Rand) selection.Selection {
 				Reaction: "gamma p -> p pi0, pi0 -> gamma gamma", Beam: tagged, ExtraObjects: soft,
 				Measurements: []selection.ProductMeasurement{direction("p")},
 				Condition: all(window(selection.InvariantMass, 0, 2, "pi0"), window(selection.MissingMassSquared, -1, 4, "pi0"),
-					anyOf(window(selection.MissingDirection, 0, 3, "p"), not(window(selection.MomentumTransfer, -4, 0, "pi0")))),
+					anyOf(window(selection.MissingDirection, 0, 3, "p"), noneOf(window(selection.MomentumTransfer, -4, 0, "pi0")))),
 				Ranking: closest("pi0"),
 				Record: []selection.Window{
 					record(window(selection.MissingDirection, 0, 1, "p"), 0),
@@ -174,7 +174,7 @@ func everything(r *rand.Rand) selection.Selection {
 			{Reaction: "omega -> pi0 gamma, pi0 -> gamma gamma", Condition: all(window(selection.Momentum, 0, 2, "gamma[0]"))},
 			{
 				Reaction: "-> n gamma", ExtraObjects: soft,
-				Condition: all(not(window(selection.Angle, 0, 3, "n")), window(selection.Coplanarity, -3, 3, "n")),
+				Condition: all(noneOf(window(selection.Angle, 0, 3, "n")), window(selection.Coplanarity, -3, 3, "n")),
 			},
 		},
 	}

@@ -195,8 +195,8 @@ type Condition struct {
 	AllOf []Condition
 	// AnyOf must hold at least one.
 	AnyOf []Condition
-	// Not must not hold.
-	Not *Condition
+	// NoneOf must not hold any one.
+	NoneOf []Condition
 }
 
 // Ranking orders the assignments of one hypothesis; the first is its best. Ties go

@@ -213,7 +213,7 @@ func bandMessage(region *decay.Dalitz, band bandForm) *kinegatev1.DalitzBand {
 	if band.swapped {
 		from, to = to, from
 	}
-	return &kinegatev1.DalitzBand{Inside: true, From: pointMessage(from), To: pointMessage(to)}
+	return &kinegatev1.DalitzBand{Inside: true, Start: pointMessage(from), End: pointMessage(to)}
 }
 
 func pointMessage(p decay.Point) *kinegatev1.DalitzPoint {

@@ -88,14 +88,14 @@ func TestDalitzBands(t *testing.T) {
 		t.Fatal(err)
 	}
 	bands := m.GetBoundaries()[0].GetBands()
-	from, to := bands[0].GetFrom(), bands[0].GetTo()
+	from, to := bands[0].GetStart(), bands[0].GetEnd()
 	if !bands[0].GetInside() || from.GetFirstSecondGev2() != square || from.GetFirstThirdGev2() >= to.GetFirstThirdGev2() {
 		t.Errorf("%v", bands[0])
 	}
-	if swapped := bands[1]; swapped.GetFrom().GetFirstThirdGev2() != to.GetFirstThirdGev2() || swapped.GetTo().GetSecondThirdGev2() != from.GetSecondThirdGev2() {
+	if swapped := bands[1]; swapped.GetStart().GetFirstThirdGev2() != to.GetFirstThirdGev2() || swapped.GetEnd().GetSecondThirdGev2() != from.GetSecondThirdGev2() {
 		t.Errorf("%v, want the ends of %v exchanged", bands[1], bands[0])
 	}
-	if bands[2].GetInside() || bands[2].GetFrom() != nil {
+	if bands[2].GetInside() || bands[2].GetStart() != nil {
 		t.Errorf("outside: %v", bands[2])
 	}
 }

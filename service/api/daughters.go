@@ -126,7 +126,7 @@ func granddaughters(
 				return In("parent", err)
 			}
 			g := &kinegatev1.GranddaughterLimits{
-				From:   from.Name,
+				Parent: from.Name,
 				Limits: daughterLimits(r.Products[n].Name, &decay.Daughter{Limits: l, Mass: own[k]}),
 			}
 			if len(masses) == 2 && len(own) == 2 {

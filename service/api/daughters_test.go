@@ -77,7 +77,7 @@ func TestGranddaughters(t *testing.T) {
 	}
 	for _, g := range m.GetGranddaughters() {
 		r := g.GetLimits().GetRestFrameEnergy()
-		if g.GetFrom() != "Lambda" || !near(g.GetRestFrameEnergyDensityPerGev()*(r.GetMaxGev()-r.GetMinGev()), 1, 1e-12) {
+		if g.GetParent() != "Lambda" || !near(g.GetRestFrameEnergyDensityPerGev()*(r.GetMaxGev()-r.GetMinGev()), 1, 1e-12) {
 			t.Errorf("%v", g)
 		}
 	}

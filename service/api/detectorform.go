@@ -71,7 +71,8 @@ func (f *former) trackerForm(path string, d *kinegatev1.Tracker) *detector.Track
 	for i, x := range d.GetConfusions() {
 		here := index(path+".confusions", i)
 		t.Confusions = append(t.Confusions, detector.Confusion{
-			From: f.species(here+".from", x.GetFrom()), To: f.species(here+".to", x.GetTo()), Probability: x.GetProbability(),
+			Species: f.species(here+".species", x.GetSpecies()), TakenFor: f.species(here+".taken_for", x.GetTakenFor()),
+			Probability: x.GetProbability(),
 		})
 	}
 	return t

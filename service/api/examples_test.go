@@ -134,7 +134,7 @@ func TestExamplesOfSelections(t *testing.T) {
 				})
 				for _, block := range made.blocks() {
 					reply, err := s.bulk.JudgeBlock(t.Context(), &kinegatev1.JudgeBlockRequest{
-						Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: chosen}},
+						Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Given{Given: chosen}},
 						Block:     block.GetEvents(),
 					})
 					if err != nil {
@@ -160,8 +160,8 @@ func TestExampleOfMassesFromEvents(t *testing.T) {
 	t.Parallel()
 	block, _ := dimuon()
 	reply, err := newServices(t).bulk.JudgeBlock(t.Context(), &kinegatev1.JudgeBlockRequest{
-		Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{
-			Inline: readExample(t, "mass-from-event.yaml"),
+		Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Given{
+			Given: readExample(t, "mass-from-event.yaml"),
 		}},
 		Block: block,
 	})

@@ -85,7 +85,7 @@ func smallDetector() *kinegatev1.Detector {
 		Tracker: &kinegatev1.Tracker{
 			Theta: theta(), MomentumMinGev: 0.1, Constant: 0.01, AngleSigmaRad: 0.003, Identify: true, Efficiency: new(0.9),
 			Confusions: []*kinegatev1.SpeciesConfusion{{
-				From: kinegatev1.Species_SPECIES_PROTON, To: kinegatev1.Species_SPECIES_PION, Probability: 0.1,
+				Species: kinegatev1.Species_SPECIES_PROTON, TakenFor: kinegatev1.Species_SPECIES_PION, Probability: 0.1,
 			}},
 		},
 		Tagger:    &kinegatev1.Tagger{SigmaGev: 0.005, TimeSigmaNs: 1},

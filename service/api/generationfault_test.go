@@ -95,8 +95,8 @@ func TestGenerationFaults(t *testing.T) {
 		"accidentals": {func(g *kinegatev1.Generation) { g.Accidentals.RateHz = 1e12 }, codes.InvalidArgument, "accidentals.rate_hz", "100"},
 		"target":      {func(g *kinegatev1.Generation) { g.Target.LengthM = math.Inf(1) }, codes.InvalidArgument, "target.length_m", "finite"},
 		"detector":    {func(g *kinegatev1.Generation) { g.Detector.Tracker.Efficiency = new(1.5) }, codes.InvalidArgument, "detector.tracker.efficiency", "0 to 1"},
-		"species": {func(g *kinegatev1.Generation) { g.Detector.Tracker.Confusions[0].From = 99 },
-			codes.InvalidArgument, "detector.tracker.confusions[0].from", "contract"},
+		"species": {func(g *kinegatev1.Generation) { g.Detector.Tracker.Confusions[0].Species = 99 },
+			codes.InvalidArgument, "detector.tracker.confusions[0].species", "contract"},
 	} {
 		t.Run(name, func(t *testing.T) {
 			g := sample()
@@ -213,11 +213,11 @@ func TestFileFaultsOnce(t *testing.T) {
 	s := newServices(t).generation
 	const tracker = "tracker:\n  theta: {min_rad: 0.1, max_rad: 2}\n  constant: 0.01\n  angle_sigma_rad: 0.01\n  identify: true\n"
 	for yaml, want := range map[string]string{
-		tracker + "  confusions: [{from: SPECIES_PION, to: SPECIES_PIN, probability: 0.1}]\n":       "6:41 tracker.confusions[0].to",
-		tracker + "  confusions: [{from: SPECIES_PION, probability: 0.1}]\n":                        "6:16 tracker.confusions[0].to",
-		strings.Replace(tracker, "theta:", "thata:", 1):                                             "2:3 tracker.thata",
-		strings.Replace(tracker, "max_rad", "max_deg", 1):                                           "2:25 tracker.theta.max_deg",
-		strings.Replace(tracker, "angle_sigma_rad: 0.01", "angle_sigma_rad: -1", 1) + "name: a b\n": "4:3 tracker.angle_sigma_rad, 6:1 name",
+		tracker + "  confusions: [{species: SPECIES_PION, taken_for: SPECIES_PIN, probability: 0.1}]\n": "6:51 tracker.confusions[0].taken_for",
+		tracker + "  confusions: [{species: SPECIES_PION, probability: 0.1}]\n":                         "6:16 tracker.confusions[0].taken_for",
+		strings.Replace(tracker, "theta:", "thata:", 1):                                                 "2:3 tracker.thata",
+		strings.Replace(tracker, "max_rad", "max_deg", 1):                                               "2:25 tracker.theta.max_deg",
+		strings.Replace(tracker, "angle_sigma_rad: 0.01", "angle_sigma_rad: -1", 1) + "name: a b\n":     "4:3 tracker.angle_sigma_rad, 6:1 name",
 	} {
 		reply, err := s.CheckDetector(t.Context(), &kinegatev1.CheckDetectorRequest{Form: &kinegatev1.CheckDetectorRequest_Yaml{Yaml: yaml}})
 		if err != nil {

@@ -38,9 +38,9 @@ func (s *selectionService) newJudging(
 	var c *compiledSelection
 	var err error
 	switch x := source.GetSource().(type) {
-	case *kinegatev1.SelectionSource_Inline:
-		if c, err = compile(x.Inline, s.deps.Table); err != nil {
-			return nil, selectionError(x.Inline.GetName(), In("selection.inline", err))
+	case *kinegatev1.SelectionSource_Given:
+		if c, err = compile(x.Given, s.deps.Table); err != nil {
+			return nil, selectionError(x.Given.GetName(), In("selection.given", err))
 		}
 	case *kinegatev1.SelectionSource_Named:
 		if c, err = s.library.find(x.Named); err != nil {
@@ -50,7 +50,7 @@ func (s *selectionService) newJudging(
 			j.follow = x.Named.GetName()
 		}
 	default:
-		f.need("selection", "empty", "inline or named")
+		f.need("selection", "empty", "given or named")
 		return nil, f.faults
 	}
 	if largest, limit := c.largestReply(limits, j.detail), int64(s.deps.Limits.MessageBytes); largest > limit {

@@ -160,12 +160,12 @@ hypotheses:
 			}
 			block, _ := dimuon()
 			_, err := newServices(t).bulk.JudgeBlock(t.Context(), &kinegatev1.JudgeBlockRequest{
-				Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: reply.GetSelection()}}, Block: block,
+				Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Given{Given: reply.GetSelection()}}, Block: block,
 			})
 			if err == nil {
 				t.Fatal("the faulty selection judges")
 			}
-			if v := Explain(err).Violations; len(v) != 1 || v[0].Field != "selection.inline."+field {
+			if v := Explain(err).Violations; len(v) != 1 || v[0].Field != "selection.given."+field {
 				t.Errorf("violations %v", v)
 			}
 		})
@@ -217,7 +217,7 @@ func TestJudgeBlockOfAMeasuredEvent(t *testing.T) {
 	}
 	block, printed := dimuon()
 	reply, err := newServices(t).bulk.JudgeBlock(t.Context(), &kinegatev1.JudgeBlockRequest{
-		Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: checkText(t, string(yaml)).GetSelection()}},
+		Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Given{Given: checkText(t, string(yaml)).GetSelection()}},
 		Entries:   kinegatev1.EntryDetail_ENTRY_DETAIL_ACCEPTED,
 		Block:     block,
 	})
@@ -245,7 +245,7 @@ func TestJudgeBlockRefusals(t *testing.T) {
 	valid := func() *kinegatev1.JudgeBlockRequest {
 		block, _ := dimuon()
 		return &kinegatev1.JudgeBlockRequest{
-			Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: &kinegatev1.Selection{
+			Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Given{Given: &kinegatev1.Selection{
 				Name: "pairs", Hypotheses: []*kinegatev1.Hypothesis{{Name: "pair", Reaction: "-> mu+ mu-"}},
 			}}},
 			Block: block,
@@ -263,14 +263,14 @@ func TestJudgeBlockRefusals(t *testing.T) {
 		{"no block", func(r *kinegatev1.JudgeBlockRequest) { r.Block = nil }, BlockInvalid, "block.coordinates"},
 		{"short column", func(r *kinegatev1.JudgeBlockRequest) { r.Block.EventIds = []byte{1} }, BlockInvalid, "block.event_ids.length"},
 		{"no selection", func(r *kinegatev1.JudgeBlockRequest) { r.Selection = nil }, FieldInvalid, "selection"},
-		{"no hypothesis", func(r *kinegatev1.JudgeBlockRequest) { r.GetSelection().GetInline().Hypotheses = nil }, SelectionInvalid, "selection.inline.hypotheses"},
+		{"no hypothesis", func(r *kinegatev1.JudgeBlockRequest) { r.GetSelection().GetGiven().Hypotheses = nil }, SelectionInvalid, "selection.given.hypotheses"},
 		{"unknown name", func(r *kinegatev1.JudgeBlockRequest) {
 			r.Selection = &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Named{Named: &kinegatev1.SelectionReference{Name: "x"}}}
 		}, SelectionNotFound, ""},
 		{"detail", func(r *kinegatev1.JudgeBlockRequest) { r.Entries = 77 }, FieldInvalid, "entries"},
 		{"unknown enum", func(r *kinegatev1.JudgeBlockRequest) {
-			r.GetSelection().GetInline().GetHypotheses()[0].Role = 300
-		}, SelectionInvalid, "selection.inline.hypotheses[0].role"},
+			r.GetSelection().GetGiven().GetHypotheses()[0].Role = 300
+		}, SelectionInvalid, "selection.given.hypotheses[0].role"},
 	} {
 		t.Run(c.name, func(t *testing.T) {
 			t.Parallel()
@@ -366,7 +366,7 @@ func FuzzSelectionFile(f *testing.F) {
 		}
 		block, _ := dimuon()
 		_, err = s.bulk.JudgeBlock(t.Context(), &kinegatev1.JudgeBlockRequest{
-			Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: reply.GetSelection()}},
+			Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Given{Given: reply.GetSelection()}},
 			Block:     block,
 		})
 		if err != nil {
@@ -399,7 +399,7 @@ func FuzzEventBlock(f *testing.F) {
 			return
 		}
 		reply, err := s.bulk.JudgeBlock(t.Context(), &kinegatev1.JudgeBlockRequest{
-			Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: selection}},
+			Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Given{Given: selection}},
 			Entries:   kinegatev1.EntryDetail_ENTRY_DETAIL_ALL,
 			Block:     &m,
 		})
@@ -426,7 +426,7 @@ func TestBrokenLawOfSelection(t *testing.T) {
 	}
 	block, _ := dimuon()
 	_, err := newServices(t).bulk.JudgeBlock(t.Context(), &kinegatev1.JudgeBlockRequest{
-		Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: reply.GetSelection()}}, Block: block,
+		Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Given{Given: reply.GetSelection()}}, Block: block,
 	})
 	if err == nil || !strings.Contains(err.Error(), "hypotheses[0].reaction: "+says) {
 		t.Errorf("the refusal is %v", err)

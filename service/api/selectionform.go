@@ -190,9 +190,8 @@ func (f *former) condition(at string, m *kinegatev1.Condition) selection.Conditi
 	for i, part := range m.GetAnyOf() {
 		c.AnyOf = append(c.AnyOf, f.condition(index(at+".any_of", i), part))
 	}
-	if part := m.GetNot(); part != nil {
-		not := f.condition(at+".not", part)
-		c.Not = &not
+	for i, part := range m.GetNoneOf() {
+		c.NoneOf = append(c.NoneOf, f.condition(index(at+".none_of", i), part))
 	}
 	return c
 }

@@ -130,7 +130,7 @@ func idleJudge(t *testing.T, conn *grpc.ClientConn) grpc.BidiStreamingClient[kin
 	if err != nil {
 		t.Fatal(err)
 	}
-	open := &kinegatev1.JudgeOpen{Selection: inline(pairSelection())}
+	open := &kinegatev1.JudgeOpen{Selection: given(pairSelection())}
 	if err := stream.Send(&kinegatev1.JudgeRequest{Frame: &kinegatev1.JudgeRequest_Open{Open: open}}); err != nil {
 		t.Fatal(err)
 	}

@@ -360,8 +360,8 @@ func TestLargestHonestMessagesPass(t *testing.T) {
 	for _, m := range []proto.Message{
 		&kinegatev1.JudgeBlockRequest{Block: block},
 		&kinegatev1.JudgeRequest{Frame: &kinegatev1.JudgeRequest_Open{Open: &kinegatev1.JudgeOpen{
-			Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{
-				Inline: &kinegatev1.Selection{Name: "s", Hypotheses: hypotheses},
+			Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Given{
+				Given: &kinegatev1.Selection{Name: "s", Hypotheses: hypotheses},
 			}},
 		}}},
 	} {

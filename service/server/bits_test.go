@@ -121,7 +121,7 @@ func digest(t *testing.T, r *running, open *kinegatev1.JudgeOpen, sample history
 		t.Errorf("the sample tells little: %d accepted", accepted)
 	}
 	return fmt.Sprintf("%s: numerics %d, %d events, %d accepted, sha256 %x\n",
-		open.GetSelection().GetInline().GetName(), kinematics.NumericsVersion, events, accepted, sum.Sum(nil))
+		open.GetSelection().GetGiven().GetName(), kinematics.NumericsVersion, events, accepted, sum.Sum(nil))
 }
 
 // TestUnaryAndStreamAgree: JudgeBlock says what the stream says.

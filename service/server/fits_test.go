@@ -65,7 +65,7 @@ func measuredPions(t *testing.T, r *running, events int64) *kinegatev1.EventBloc
 func TestFitsEndToEnd(t *testing.T) {
 	r := start(t)
 	block := measuredPions(t, r, 200)
-	source := &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: fittedPions()}}
+	source := &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Given{Given: fittedPions()}}
 	open := &kinegatev1.JudgeOpen{
 		Selection: source, Entries: kinegatev1.EntryDetail_ENTRY_DETAIL_ALL,
 		Limits: &kinegatev1.Limits{BlockEventCount: 1000, BlockCandidateCount: 1000},
@@ -137,7 +137,7 @@ func TestBlocksWithoutCovariance(t *testing.T) {
 	whole := measuredPions(t, r, 10)
 	bare, _ := proto.Clone(whole).(*kinegatev1.EventBlock)
 	bare.Covariance = nil
-	source := &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: fittedPions()}}
+	source := &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Given{Given: fittedPions()}}
 	service := kinegatev1.NewSelectionServiceClient(r.general(t))
 	_, err := service.JudgeBlock(t.Context(), &kinegatev1.JudgeBlockRequest{Selection: source, Block: bare})
 	wantReason(t, err, api.BlockInvalid)

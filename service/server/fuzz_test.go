@@ -113,7 +113,7 @@ func seeds() []proto.Message {
 			Yaml: "name: pairs\nhypotheses:\n- name: a\n  reaction: -> mu+ mu-\n",
 		}},
 		&kinegatev1.JudgeBlockRequest{
-			Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: &kinegatev1.Selection{
+			Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Given{Given: &kinegatev1.Selection{
 				Name: "s", Hypotheses: []*kinegatev1.Hypothesis{{Name: "a", Reaction: "-> mu+ mu-"}},
 			}}},
 			Entries: kinegatev1.EntryDetail_ENTRY_DETAIL_ALL,

@@ -61,8 +61,8 @@ func pairBlock(sequence int64, events int) *kinegatev1.EventBlock {
 
 type judgeClient = grpc.BidiStreamingClient[kinegatev1.JudgeRequest, kinegatev1.JudgeResponse]
 
-func inline(s *kinegatev1.Selection) *kinegatev1.SelectionSource {
-	return &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: s}}
+func given(s *kinegatev1.Selection) *kinegatev1.SelectionSource {
+	return &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Given{Given: s}}
 }
 
 // openJudge opens a stream on the gate listener.
@@ -116,7 +116,7 @@ func TestJudgeAnswersInOrder(t *testing.T) {
 	r := start(t)
 	const first, blocks, events = 41, 100, 300
 	stream, opened := openJudge(t, r, &kinegatev1.JudgeOpen{
-		Selection: inline(pairSelection()), FirstSequence: first, Entries: kinegatev1.EntryDetail_ENTRY_DETAIL_ACCEPTED,
+		Selection: given(pairSelection()), FirstSequence: first, Entries: kinegatev1.EntryDetail_ENTRY_DETAIL_ACCEPTED,
 	})
 	if opened.GetCredit().GetBlockCount() != 8 || len(opened.GetSelectionDigest()) != 64 ||
 		len(opened.GetHypotheses()) != 1 || opened.GetHypotheses()[0].GetObservables()[0] != "mass" {
@@ -161,7 +161,7 @@ func TestJudgeAnswersInOrder(t *testing.T) {
 
 // TestJudgeRefusals holds one breach of the protocol a row.
 func TestJudgeRefusals(t *testing.T) {
-	valid := func() *kinegatev1.JudgeOpen { return &kinegatev1.JudgeOpen{Selection: inline(pairSelection())} }
+	valid := func() *kinegatev1.JudgeOpen { return &kinegatev1.JudgeOpen{Selection: given(pairSelection())} }
 	frame := func(b *kinegatev1.EventBlock) *kinegatev1.JudgeRequest {
 		return &kinegatev1.JudgeRequest{Frame: &kinegatev1.JudgeRequest_Block{Block: b}}
 	}
@@ -180,8 +180,8 @@ func TestJudgeRefusals(t *testing.T) {
 		{"empty frame", []*kinegatev1.JudgeRequest{{}}, api.StreamProtocolBroken},
 		{"no selection", opening(func(o *kinegatev1.JudgeOpen) { o.Selection = nil }), api.FieldInvalid},
 		{"faulty selection", opening(func(o *kinegatev1.JudgeOpen) {
-			o.Selection = inline(pairSelection())
-			o.GetSelection().GetInline().Hypotheses[0].Reaction = "pi0 -> gama"
+			o.Selection = given(pairSelection())
+			o.GetSelection().GetGiven().Hypotheses[0].Reaction = "pi0 -> gama"
 		}), api.SelectionInvalid},
 		{"unknown name", opening(func(o *kinegatev1.JudgeOpen) {
 			o.Selection = &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Named{Named: &kinegatev1.SelectionReference{Name: "none"}}}
@@ -232,7 +232,7 @@ func TestJudgeCreditIsEnforced(t *testing.T) {
 		d.Now = time.Now
 	})
 	stream, _ := openJudge(t, r, &kinegatev1.JudgeOpen{
-		Selection: inline(pairSelection()), Entries: kinegatev1.EntryDetail_ENTRY_DETAIL_ALL,
+		Selection: given(pairSelection()), Entries: kinegatev1.EntryDetail_ENTRY_DETAIL_ALL,
 	})
 	go func() {
 		for i := range int64(1000) {
@@ -256,7 +256,7 @@ func TestJudgeCreditIsEnforced(t *testing.T) {
 // advice to try again, and gets in when another leaves.
 func TestJudgePoolIsShared(t *testing.T) {
 	r := start(t, func(o *Options, _ *Deps) { o.CreditPool = o.CreditLimit })
-	open := &kinegatev1.JudgeOpen{Selection: inline(pairSelection())}
+	open := &kinegatev1.JudgeOpen{Selection: given(pairSelection())}
 	first, _ := openJudge(t, r, open)
 	second, err := judgeOn(t, r)
 	if err != nil {
@@ -278,7 +278,7 @@ func TestJudgePoolIsShared(t *testing.T) {
 func TestJudgeRejectsBadBlocks(t *testing.T) {
 	r := start(t)
 	stream, _ := openJudge(t, r, &kinegatev1.JudgeOpen{
-		Selection: inline(pairSelection()), Limits: &kinegatev1.Limits{BlockEventCount: 10, BlockObjectCount: 16},
+		Selection: given(pairSelection()), Limits: &kinegatev1.Limits{BlockEventCount: 10, BlockObjectCount: 16},
 	})
 	spoil := []struct {
 		name, field string
@@ -338,7 +338,7 @@ func TestJudgeExpires(t *testing.T) {
 			return at
 		}
 	})
-	stream, _ := openJudge(t, r, &kinegatev1.JudgeOpen{Selection: inline(pairSelection()), LatencyBudgetS: new(0.5)})
+	stream, _ := openJudge(t, r, &kinegatev1.JudgeOpen{Selection: given(pairSelection()), LatencyBudgetS: new(0.5)})
 	sendBlock(t, stream, pairBlock(0, 100))
 	v, err := nextVerdict(stream)
 	if err != nil {
@@ -357,7 +357,7 @@ func TestJudgeExpires(t *testing.T) {
 // TestJudgeHeartbeats: after a second of silence the server says how far it is.
 func TestJudgeHeartbeats(t *testing.T) {
 	r := start(t)
-	stream, _ := openJudge(t, r, &kinegatev1.JudgeOpen{Selection: inline(pairSelection()), FirstSequence: 7})
+	stream, _ := openJudge(t, r, &kinegatev1.JudgeOpen{Selection: given(pairSelection()), FirstSequence: 7})
 	sendBlock(t, stream, pairBlock(7, 1))
 	if _, err := nextVerdict(stream); err != nil {
 		t.Fatal(err)
@@ -372,7 +372,7 @@ func TestJudgeHeartbeats(t *testing.T) {
 // ends the stream well.
 func TestJudgeDrains(t *testing.T) {
 	r := start(t)
-	stream, _ := openJudge(t, r, &kinegatev1.JudgeOpen{Selection: inline(pairSelection())})
+	stream, _ := openJudge(t, r, &kinegatev1.JudgeOpen{Selection: given(pairSelection())})
 	sendBlock(t, stream, pairBlock(0, 10))
 	if _, err := nextVerdict(stream); err != nil {
 		t.Fatal(err)
@@ -397,7 +397,7 @@ func TestJudgeResumeGivesTheSameBits(t *testing.T) {
 	r := start(t)
 	open := func(first int64) *kinegatev1.JudgeOpen {
 		return &kinegatev1.JudgeOpen{
-			Selection: inline(pairSelection()), FirstSequence: first, Entries: kinegatev1.EntryDetail_ENTRY_DETAIL_ALL,
+			Selection: given(pairSelection()), FirstSequence: first, Entries: kinegatev1.EntryDetail_ENTRY_DETAIL_ALL,
 		}
 	}
 	whole, _ := openJudge(t, r, open(0))
@@ -422,7 +422,7 @@ func TestJudgeResumeGivesTheSameBits(t *testing.T) {
 // TestJudgeIdle ends a stream that says nothing, not even a heartbeat.
 func TestJudgeIdle(t *testing.T) {
 	r := start(t, func(o *Options, _ *Deps) { o.StreamIdle = time.Second })
-	stream, _ := openJudge(t, r, &kinegatev1.JudgeOpen{Selection: inline(pairSelection())})
+	stream, _ := openJudge(t, r, &kinegatev1.JudgeOpen{Selection: given(pairSelection())})
 	for {
 		_, err := stream.Recv()
 		if err == nil {

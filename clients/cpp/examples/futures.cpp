@@ -49,7 +49,7 @@ int main(int argc, char** argv) {
 
   try {
     kinegate::v1::JudgeOpen open;
-    *open.mutable_selection() = kinegate::Inline(Pi0());
+    *open.mutable_selection() = kinegate::Given(Pi0());
     open.set_entries(kinegate::v1::ENTRY_DETAIL_ALL);
     // Smaller blocks leave room for all entries.
     open.mutable_limits()->set_block_event_count(1000);

@@ -46,9 +46,9 @@ std::optional<Error> Guard(const std::string& who, const F& call) {
 
 }  // namespace
 
-v1::SelectionSource Inline(v1::Selection selection) {
+v1::SelectionSource Given(v1::Selection selection) {
   v1::SelectionSource source;
-  *source.mutable_inline_() = std::move(selection);
+  *source.mutable_given() = std::move(selection);
   return source;
 }
 

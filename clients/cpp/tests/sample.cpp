@@ -63,7 +63,7 @@ v1::Selection PairSelection() {
 
 v1::JudgeOpen OpenWith(v1::Selection selection) {
   v1::JudgeOpen open;
-  *open.mutable_selection() = Inline(std::move(selection));
+  *open.mutable_selection() = Given(std::move(selection));
   open.set_entries(v1::ENTRY_DETAIL_ALL);
   open.mutable_limits()->set_block_event_count(1000);
   open.mutable_limits()->set_block_object_count(8000);

@@ -75,7 +75,7 @@ func PhotonSelection() *kinegatev1.Selection {
 // AllEntries opens a stream that tells everything about the sample.
 func AllEntries() *kinegatev1.JudgeOpen {
 	return &kinegatev1.JudgeOpen{
-		Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: PhotonSelection()}},
+		Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Given{Given: PhotonSelection()}},
 		Entries:   kinegatev1.EntryDetail_ENTRY_DETAIL_ALL,
 		Limits:    &kinegatev1.Limits{BlockEventCount: 4096, BlockObjectCount: 32768},
 	}
@@ -100,7 +100,7 @@ func Measured(from, count int) *kinegatev1.EventBlock {
 func FittedEntries() *kinegatev1.JudgeOpen {
 	open := AllEntries()
 	open.Limits = &kinegatev1.Limits{BlockEventCount: 2000, BlockObjectCount: 12000}
-	s := open.GetSelection().GetInline()
+	s := open.GetSelection().GetGiven()
 	s.Name = "fitted-photons"
 	s.Hypotheses[0].Fit = &kinegatev1.Fit{Masses: []*kinegatev1.FitMass{{
 		Products: []string{"gamma[0]", "gamma[1]"}, MassGev: new(0.1349768),

@@ -131,7 +131,7 @@ class SelectionCheck(Check[selection_pb2.CheckSelectionResponse]):
     def selection(self) -> Selection:
         """Return the selection, or raise SelectionFaulty with all faults."""
         self.refuse_faults("selection", SelectionFaulty, "SELECTION_INVALID")
-        source = selection_pb2.SelectionSource(inline=self.message.selection)
+        source = selection_pb2.SelectionSource(given=self.message.selection)
         groups = [g.name for g in self.message.selection.groups]
         return Selection(source, self.digest, self.hypotheses, groups)
 
@@ -155,7 +155,7 @@ def check(source: SelectionLike) -> Question[SelectionCheck]:
     11:64: hypotheses[1].condition.window.invariant_mass.max_gev
     """
     request = selection_pb2.CheckSelectionRequest()
-    given = source.source.inline if isinstance(source, Selection) else source
+    given = source.source.given if isinstance(source, Selection) else source
     fill(request, "selection", given)
     return Question("SelectionService", "CheckSelection", request, lambda r: SelectionCheck(r[0]))
 

@@ -184,6 +184,7 @@ var collective = map[string]string{
 	"SolveTwoBodyRequest.laboratory_momenta_gev": "momenta, the plural of momentum",
 	"Condition.all_of":                           "reads as the sentence it is",
 	"Condition.any_of":                           "reads as the sentence it is",
+	"Condition.none_of":                          "reads as the sentence it is",
 	"CoplanarityWindow.first":                    "the products of the first side",
 	"CoplanarityWindow.second":                   "the products of the second side",
 	"FitEqualMasses.first":                       "the products of the first sum",
@@ -192,6 +193,19 @@ var collective = map[string]string{
 	"InclusiveRemainder.lightest":                "the lightest final state that fits",
 	"Reaction.initial":                           "the initial state, one particle or two",
 }
+
+// keywords are those of Python and C++: a field of such a name is out of reach, or gets another
+// name, in the stubs. Those of Go do no harm, for its names begin with capitals.
+var keywords = strings.Fields(`
+	False None True and as assert async await break class continue def del elif else except finally for
+	from global if import in is lambda nonlocal not or pass raise return try while with yield
+
+	alignas alignof and_eq asm auto bitand bitor bool case catch char char8_t char16_t char32_t compl concept
+	const consteval constexpr constinit const_cast co_await co_return co_yield decltype default delete do
+	double dynamic_cast enum explicit export extern false float friend goto inline int long mutable namespace
+	new noexcept not_eq nullptr operator or_eq private protected public register reinterpret_cast requires
+	short signed sizeof static static_assert static_cast struct switch template this thread_local throw true
+	typedef typeid typename union unsigned using virtual void volatile wchar_t xor xor_eq`)
 
 var (
 	digitWord = regexp.MustCompile(`(^|_)[0-9]`)
@@ -259,6 +273,24 @@ func (c *contract) field(field protoreflect.FieldDescriptor) []string {
 		add("has a word that starts with a digit")
 	}
 
+	if slices.Contains(keywords, name) {
+		add("is a keyword of Python or C++")
+	}
+
+	return faults
+}
+
+// enums returns what is wrong with the values of enums.
+func enums(all protoreflect.EnumDescriptors) (faults []string) {
+	for i := range all.Len() {
+		values := all.Get(i).Values()
+		for j := range values.Len() {
+			if name := values.Get(j).Name(); slices.Contains(keywords, string(name)) {
+				faults = append(faults, string(all.Get(i).Name())+"."+string(name)+" is a keyword of Python or C++")
+			}
+		}
+	}
+
 	return faults
 }
 
@@ -273,7 +305,7 @@ func (c *contract) messages(all protoreflect.MessageDescriptors) (faults []strin
 		}
 
 		inner, count := c.messages(message.Messages())
-		faults = append(faults, inner...)
+		faults = append(faults, slices.Concat(inner, enums(message.Enums()))...)
 		fields += count
 	}
 
@@ -288,7 +320,7 @@ func TestContractNames(t *testing.T) {
 
 	protoregistry.GlobalFiles.RangeFilesByPackage("kinegate.v1", func(file protoreflect.FileDescriptor) bool {
 		faults, count := rules.messages(file.Messages())
-		for _, fault := range faults {
+		for _, fault := range slices.Concat(faults, enums(file.Enums())) {
 			t.Errorf("%s: %s", file.Path(), fault)
 		}
 
@@ -344,6 +376,12 @@ func seededFile(t *testing.T, fields ...string) protoreflect.FileDescriptor {
 		Package:     new("seeded.v1"),
 		Syntax:      new("proto3"),
 		MessageType: []*descriptorpb.DescriptorProto{message},
+		EnumType: []*descriptorpb.EnumDescriptorProto{{
+			Name: new("Answer"),
+			Value: []*descriptorpb.EnumValueDescriptorProto{
+				{Name: new("UNSURE"), Number: new(int32(0))}, {Name: new("None"), Number: new(int32(1))},
+			},
+		}},
 	}, nil)
 	if err != nil {
 		t.Fatal(err)
@@ -359,7 +397,7 @@ func TestContractNamesSeeOffences(t *testing.T) {
 		"single double mass", "single double energy_mev", "single bytes momentum", "single float width_gev",
 		"single uint32 row", "single uint64 id", "single fixed32 word", "single int64 events", "single int32 num_events",
 		"single int32 n_photons", "repeated double length_m", "repeated string product",
-		"single string pair_4momentum",
+		"single string pair_4momentum", "single string from", "single bool not", "single string inline",
 	}
 
 	good := []string{
@@ -375,9 +413,15 @@ func TestContractNamesSeeOffences(t *testing.T) {
 		used:         map[string]bool{},
 	}
 
-	faults, fields := rules.messages(seededFile(t, slices.Concat(bad, good)...).Messages())
+	seeded := seededFile(t, slices.Concat(bad, good)...)
+	faults, fields := rules.messages(seeded.Messages())
+
 	if fields != len(bad)+len(good) {
 		t.Errorf("%d fields were read, want %d", fields, len(bad)+len(good))
+	}
+
+	if found := enums(seeded.Enums()); !slices.Equal(found, []string{"Answer.None is a keyword of Python or C++"}) {
+		t.Errorf("of an enum with a value that is a keyword: %q", found)
 	}
 
 	all := strings.Join(faults, "\n") + "\n"

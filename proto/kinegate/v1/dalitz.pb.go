@@ -424,9 +424,9 @@ type DalitzBand struct {
 	Inside bool `protobuf:"varint,1,opt,name=inside,proto3" json:"inside,omitempty"`
 	// The end at which the first named body of the pair and the body outside the
 	// pair have the least mass.
-	From *DalitzPoint `protobuf:"bytes,2,opt,name=from,proto3" json:"from,omitempty"`
+	Start *DalitzPoint `protobuf:"bytes,2,opt,name=start,proto3" json:"start,omitempty"`
 	// The end at which they have the largest mass.
-	To            *DalitzPoint `protobuf:"bytes,3,opt,name=to,proto3" json:"to,omitempty"`
+	End           *DalitzPoint `protobuf:"bytes,3,opt,name=end,proto3" json:"end,omitempty"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
 }
@@ -468,16 +468,16 @@ func (x *DalitzBand) GetInside() bool {
 	return false
 }
 
-func (x *DalitzBand) GetFrom() *DalitzPoint {
+func (x *DalitzBand) GetStart() *DalitzPoint {
 	if x != nil {
-		return x.From
+		return x.Start
 	}
 	return nil
 }
 
-func (x *DalitzBand) GetTo() *DalitzPoint {
+func (x *DalitzBand) GetEnd() *DalitzPoint {
 	if x != nil {
-		return x.To
+		return x.End
 	}
 	return nil
 }
@@ -587,12 +587,12 @@ const file_kinegate_v1_dalitz_proto_rawDesc = "" +
 	"\x11second_third_gev2\x18\b \x01(\fR\x0fsecondThirdGev2\x12(\n" +
 	"\x10first_third_gev2\x18\t \x01(\fR\x0efirstThirdGev2\x12-\n" +
 	"\x05bands\x18\n" +
-	" \x03(\v2\x17.kinegate.v1.DalitzBandR\x05bands\"|\n" +
+	" \x03(\v2\x17.kinegate.v1.DalitzBandR\x05bands\"\x80\x01\n" +
 	"\n" +
 	"DalitzBand\x12\x16\n" +
-	"\x06inside\x18\x01 \x01(\bR\x06inside\x12,\n" +
-	"\x04from\x18\x02 \x01(\v2\x18.kinegate.v1.DalitzPointR\x04from\x12(\n" +
-	"\x02to\x18\x03 \x01(\v2\x18.kinegate.v1.DalitzPointR\x02to\"\x8f\x01\n" +
+	"\x06inside\x18\x01 \x01(\bR\x06inside\x12.\n" +
+	"\x05start\x18\x02 \x01(\v2\x18.kinegate.v1.DalitzPointR\x05start\x12*\n" +
+	"\x03end\x18\x03 \x01(\v2\x18.kinegate.v1.DalitzPointR\x03end\"\x8f\x01\n" +
 	"\vDalitzPoint\x12*\n" +
 	"\x11first_second_gev2\x18\x01 \x01(\x01R\x0ffirstSecondGev2\x12*\n" +
 	"\x11second_third_gev2\x18\x02 \x01(\x01R\x0fsecondThirdGev2\x12(\n" +
@@ -633,8 +633,8 @@ var file_kinegate_v1_dalitz_proto_depIdxs = []int32{
 	9,  // 6: kinegate.v1.DalitzBoundary.second_third:type_name -> kinegate.v1.SquareRange
 	9,  // 7: kinegate.v1.DalitzBoundary.first_third:type_name -> kinegate.v1.SquareRange
 	4,  // 8: kinegate.v1.DalitzBoundary.bands:type_name -> kinegate.v1.DalitzBand
-	5,  // 9: kinegate.v1.DalitzBand.from:type_name -> kinegate.v1.DalitzPoint
-	5,  // 10: kinegate.v1.DalitzBand.to:type_name -> kinegate.v1.DalitzPoint
+	5,  // 9: kinegate.v1.DalitzBand.start:type_name -> kinegate.v1.DalitzPoint
+	5,  // 10: kinegate.v1.DalitzBand.end:type_name -> kinegate.v1.DalitzPoint
 	11, // [11:11] is the sub-list for method output_type
 	11, // [11:11] is the sub-list for method input_type
 	11, // [11:11] is the sub-list for extension type_name

@@ -624,7 +624,7 @@ type GranddaughterLimits struct {
 	// of the laboratory energy is not given.
 	Limits *DaughterLimits `protobuf:"bytes,1,opt,name=limits,proto3" json:"limits,omitempty"`
 	// Reference of the daughter that it comes from.
-	From string `protobuf:"bytes,2,opt,name=from,proto3" json:"from,omitempty"`
+	Parent string `protobuf:"bytes,2,opt,name=parent,proto3" json:"parent,omitempty"`
 	// Two decays to two bodies, without preferred directions: density of the energy
 	// in the rest frame of the first parent, constant over its range. Absent for
 	// more bodies and where the range is a point.
@@ -670,9 +670,9 @@ func (x *GranddaughterLimits) GetLimits() *DaughterLimits {
 	return nil
 }
 
-func (x *GranddaughterLimits) GetFrom() string {
+func (x *GranddaughterLimits) GetParent() string {
 	if x != nil {
-		return x.From
+		return x.Parent
 	}
 	return ""
 }
@@ -995,10 +995,10 @@ const file_kinegate_v1_decay_proto_rawDesc = "" +
 	"\x10laboratory_angle\x18\a \x01(\v2\x17.kinegate.v1.AngleRangeR\x0flaboratoryAngle\x12M\n" +
 	"!laboratory_energy_density_per_gev\x18\b \x01(\x01H\x00R\x1dlaboratoryEnergyDensityPerGev\x88\x01\x01\x12#\n" +
 	"\rdouble_valued\x18\t \x01(\bR\fdoubleValuedB$\n" +
-	"\"_laboratory_energy_density_per_gev\"\xd2\x01\n" +
+	"\"_laboratory_energy_density_per_gev\"\xd6\x01\n" +
 	"\x13GranddaughterLimits\x123\n" +
-	"\x06limits\x18\x01 \x01(\v2\x1b.kinegate.v1.DaughterLimitsR\x06limits\x12\x12\n" +
-	"\x04from\x18\x02 \x01(\tR\x04from\x12L\n" +
+	"\x06limits\x18\x01 \x01(\v2\x1b.kinegate.v1.DaughterLimitsR\x06limits\x12\x16\n" +
+	"\x06parent\x18\x02 \x01(\tR\x06parent\x12L\n" +
 	"!rest_frame_energy_density_per_gev\x18\x03 \x01(\x01H\x00R\x1crestFrameEnergyDensityPerGev\x88\x01\x01B$\n" +
 	"\"_rest_frame_energy_density_per_gev\"}\n" +
 	"\x13OpeningAngleDensity\x12+\n" +

@@ -690,9 +690,9 @@ func (x *Tracker) GetConfusions() []*SpeciesConfusion {
 type SpeciesConfusion struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
 	// True species.
-	From Species `protobuf:"varint,1,opt,name=from,proto3,enum=kinegate.v1.Species" json:"from,omitempty"`
+	Species Species `protobuf:"varint,1,opt,name=species,proto3,enum=kinegate.v1.Species" json:"species,omitempty"`
 	// Species that the mask says.
-	To Species `protobuf:"varint,2,opt,name=to,proto3,enum=kinegate.v1.Species" json:"to,omitempty"`
+	TakenFor Species `protobuf:"varint,2,opt,name=taken_for,json=takenFor,proto3,enum=kinegate.v1.Species" json:"taken_for,omitempty"`
 	// Its probability, within [0, 1]; over all confusions of one species at most 1.
 	Probability   float64 `protobuf:"fixed64,3,opt,name=probability,proto3" json:"probability,omitempty"`
 	unknownFields protoimpl.UnknownFields
@@ -729,16 +729,16 @@ func (*SpeciesConfusion) Descriptor() ([]byte, []int) {
 	return file_kinegate_v1_detector_proto_rawDescGZIP(), []int{6}
 }
 
-func (x *SpeciesConfusion) GetFrom() Species {
+func (x *SpeciesConfusion) GetSpecies() Species {
 	if x != nil {
-		return x.From
+		return x.Species
 	}
 	return Species_SPECIES_UNSPECIFIED
 }
 
-func (x *SpeciesConfusion) GetTo() Species {
+func (x *SpeciesConfusion) GetTakenFor() Species {
 	if x != nil {
-		return x.To
+		return x.TakenFor
 	}
 	return Species_SPECIES_UNSPECIFIED
 }
@@ -1103,10 +1103,10 @@ const file_kinegate_v1_detector_proto_rawDesc = "" +
 	"\n" +
 	"confusions\x18\b \x03(\v2\x1d.kinegate.v1.SpeciesConfusionR\n" +
 	"confusionsB\r\n" +
-	"\v_efficiency\"\x84\x01\n" +
-	"\x10SpeciesConfusion\x12(\n" +
-	"\x04from\x18\x01 \x01(\x0e2\x14.kinegate.v1.SpeciesR\x04from\x12$\n" +
-	"\x02to\x18\x02 \x01(\x0e2\x14.kinegate.v1.SpeciesR\x02to\x12 \n" +
+	"\v_efficiency\"\x97\x01\n" +
+	"\x10SpeciesConfusion\x12.\n" +
+	"\aspecies\x18\x01 \x01(\x0e2\x14.kinegate.v1.SpeciesR\aspecies\x121\n" +
+	"\ttaken_for\x18\x02 \x01(\x0e2\x14.kinegate.v1.SpeciesR\btakenFor\x12 \n" +
 	"\vprobability\x18\x03 \x01(\x01R\vprobability\"\xc8\x01\n" +
 	"\x11DirectionDetector\x12-\n" +
 	"\x05theta\x18\x01 \x01(\v2\x17.kinegate.v1.PolarRangeR\x05theta\x12(\n" +
@@ -1183,8 +1183,8 @@ var file_kinegate_v1_detector_proto_depIdxs = []int32{
 	5,  // 9: kinegate.v1.Calorimeter.noise:type_name -> kinegate.v1.ClusterNoise
 	2,  // 10: kinegate.v1.Tracker.theta:type_name -> kinegate.v1.PolarRange
 	7,  // 11: kinegate.v1.Tracker.confusions:type_name -> kinegate.v1.SpeciesConfusion
-	0,  // 12: kinegate.v1.SpeciesConfusion.from:type_name -> kinegate.v1.Species
-	0,  // 13: kinegate.v1.SpeciesConfusion.to:type_name -> kinegate.v1.Species
+	0,  // 12: kinegate.v1.SpeciesConfusion.species:type_name -> kinegate.v1.Species
+	0,  // 13: kinegate.v1.SpeciesConfusion.taken_for:type_name -> kinegate.v1.Species
 	2,  // 14: kinegate.v1.DirectionDetector.theta:type_name -> kinegate.v1.PolarRange
 	15, // [15:15] is the sub-list for method output_type
 	15, // [15:15] is the sub-list for method input_type

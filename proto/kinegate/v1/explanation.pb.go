@@ -370,7 +370,7 @@ type WindowExplanation struct {
 	AboveMin *float64 `protobuf:"fixed64,6,opt,name=above_min,json=aboveMin,proto3,oneof" json:"above_min,omitempty"`
 	// max - value; absent without an upper limit. Above 0 inside.
 	BelowMax *float64 `protobuf:"fixed64,7,opt,name=below_max,json=belowMax,proto3,oneof" json:"below_max,omitempty"`
-	// The value lies in [min, max). In a part of the condition under `not` this is
+	// The value lies in [min, max). In a part of the condition under `none_of` this is
 	// the window's own answer.
 	Inside        bool `protobuf:"varint,8,opt,name=inside,proto3" json:"inside,omitempty"`
 	unknownFields protoimpl.UnknownFields

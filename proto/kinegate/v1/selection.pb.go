@@ -1133,8 +1133,8 @@ type Condition struct {
 	AllOf []*Condition `protobuf:"bytes,2,rep,name=all_of,json=allOf,proto3" json:"all_of,omitempty"`
 	// At least one of these must hold.
 	AnyOf []*Condition `protobuf:"bytes,3,rep,name=any_of,json=anyOf,proto3" json:"any_of,omitempty"`
-	// This must not hold.
-	Not           *Condition `protobuf:"bytes,4,opt,name=not,proto3" json:"not,omitempty"`
+	// None of these must hold.
+	NoneOf        []*Condition `protobuf:"bytes,4,rep,name=none_of,json=noneOf,proto3" json:"none_of,omitempty"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
 }
@@ -1190,9 +1190,9 @@ func (x *Condition) GetAnyOf() []*Condition {
 	return nil
 }
 
-func (x *Condition) GetNot() *Condition {
+func (x *Condition) GetNoneOf() []*Condition {
 	if x != nil {
-		return x.Not
+		return x.NoneOf
 	}
 	return nil
 }
@@ -3189,7 +3189,7 @@ type SelectionSource struct {
 	//
 	// Types that are valid to be assigned to Source:
 	//
-	//	*SelectionSource_Inline
+	//	*SelectionSource_Given
 	//	*SelectionSource_Named
 	Source        isSelectionSource_Source `protobuf_oneof:"source"`
 	unknownFields protoimpl.UnknownFields
@@ -3233,10 +3233,10 @@ func (x *SelectionSource) GetSource() isSelectionSource_Source {
 	return nil
 }
 
-func (x *SelectionSource) GetInline() *Selection {
+func (x *SelectionSource) GetGiven() *Selection {
 	if x != nil {
-		if x, ok := x.Source.(*SelectionSource_Inline); ok {
-			return x.Inline
+		if x, ok := x.Source.(*SelectionSource_Given); ok {
+			return x.Given
 		}
 	}
 	return nil
@@ -3255,9 +3255,9 @@ type isSelectionSource_Source interface {
 	isSelectionSource_Source()
 }
 
-type SelectionSource_Inline struct {
+type SelectionSource_Given struct {
 	// A selection sent along.
-	Inline *Selection `protobuf:"bytes,1,opt,name=inline,proto3,oneof"`
+	Given *Selection `protobuf:"bytes,1,opt,name=given,proto3,oneof"`
 }
 
 type SelectionSource_Named struct {
@@ -3265,7 +3265,7 @@ type SelectionSource_Named struct {
 	Named *SelectionReference `protobuf:"bytes,2,opt,name=named,proto3,oneof"`
 }
 
-func (*SelectionSource_Inline) isSelectionSource_Source() {}
+func (*SelectionSource_Given) isSelectionSource_Source() {}
 
 func (*SelectionSource_Named) isSelectionSource_Source() {}
 
@@ -3963,12 +3963,12 @@ const file_kinegate_v1_selection_proto_rawDesc = "" +
 	"\x0fAnyExtraObjects\"P\n" +
 	"\vSoftPhotons\x12\x1b\n" +
 	"\tmax_count\x18\x01 \x01(\x05R\bmaxCount\x12$\n" +
-	"\x0emax_energy_gev\x18\x02 \x01(\x01R\fmaxEnergyGev\"\xc0\x01\n" +
+	"\x0emax_energy_gev\x18\x02 \x01(\x01R\fmaxEnergyGev\"\xc7\x01\n" +
 	"\tCondition\x12+\n" +
 	"\x06window\x18\x01 \x01(\v2\x13.kinegate.v1.WindowR\x06window\x12-\n" +
 	"\x06all_of\x18\x02 \x03(\v2\x16.kinegate.v1.ConditionR\x05allOf\x12-\n" +
-	"\x06any_of\x18\x03 \x03(\v2\x16.kinegate.v1.ConditionR\x05anyOf\x12(\n" +
-	"\x03not\x18\x04 \x01(\v2\x16.kinegate.v1.ConditionR\x03not\"\x90\v\n" +
+	"\x06any_of\x18\x03 \x03(\v2\x16.kinegate.v1.ConditionR\x05anyOf\x12/\n" +
+	"\anone_of\x18\x04 \x03(\v2\x16.kinegate.v1.ConditionR\x06noneOf\"\x90\v\n" +
 	"\x06Window\x12\x12\n" +
 	"\x04name\x18\x01 \x01(\tR\x04name\x12@\n" +
 	"\x0einvariant_mass\x18\x02 \x01(\v2\x17.kinegate.v1.MassWindowH\x00R\rinvariantMass\x12V\n" +
@@ -4140,9 +4140,9 @@ const file_kinegate_v1_selection_proto_rawDesc = "" +
 	"\x05block\x18\x02 \x01(\v2\x17.kinegate.v1.EventBlockR\x05block\x12\x1f\n" +
 	"\vevent_index\x18\x03 \x01(\x05R\n" +
 	"eventIndex\x120\n" +
-	"\x14max_assignment_count\x18\x04 \x01(\x05R\x12maxAssignmentCount\"\x86\x01\n" +
-	"\x0fSelectionSource\x120\n" +
-	"\x06inline\x18\x01 \x01(\v2\x16.kinegate.v1.SelectionH\x00R\x06inline\x127\n" +
+	"\x14max_assignment_count\x18\x04 \x01(\x05R\x12maxAssignmentCount\"\x84\x01\n" +
+	"\x0fSelectionSource\x12.\n" +
+	"\x05given\x18\x01 \x01(\v2\x16.kinegate.v1.SelectionH\x00R\x05given\x127\n" +
 	"\x05named\x18\x02 \x01(\v2\x1f.kinegate.v1.SelectionReferenceH\x00R\x05namedB\b\n" +
 	"\x06source\"S\n" +
 	"\x12SelectionReference\x12\x12\n" +
@@ -4312,7 +4312,7 @@ var file_kinegate_v1_selection_proto_depIdxs = []int32{
 	17, // 20: kinegate.v1.Condition.window:type_name -> kinegate.v1.Window
 	16, // 21: kinegate.v1.Condition.all_of:type_name -> kinegate.v1.Condition
 	16, // 22: kinegate.v1.Condition.any_of:type_name -> kinegate.v1.Condition
-	16, // 23: kinegate.v1.Condition.not:type_name -> kinegate.v1.Condition
+	16, // 23: kinegate.v1.Condition.none_of:type_name -> kinegate.v1.Condition
 	18, // 24: kinegate.v1.Window.invariant_mass:type_name -> kinegate.v1.MassWindow
 	19, // 25: kinegate.v1.Window.invariant_mass_squared:type_name -> kinegate.v1.MassSquaredWindow
 	18, // 26: kinegate.v1.Window.missing_mass:type_name -> kinegate.v1.MassWindow
@@ -4349,7 +4349,7 @@ var file_kinegate_v1_selection_proto_depIdxs = []int32{
 	57, // 57: kinegate.v1.JudgeBlockResponse.verdict:type_name -> kinegate.v1.VerdictBlock
 	42, // 58: kinegate.v1.ExplainVerdictRequest.selection:type_name -> kinegate.v1.SelectionSource
 	56, // 59: kinegate.v1.ExplainVerdictRequest.block:type_name -> kinegate.v1.EventBlock
-	4,  // 60: kinegate.v1.SelectionSource.inline:type_name -> kinegate.v1.Selection
+	4,  // 60: kinegate.v1.SelectionSource.given:type_name -> kinegate.v1.Selection
 	43, // 61: kinegate.v1.SelectionSource.named:type_name -> kinegate.v1.SelectionReference
 	46, // 62: kinegate.v1.JudgeRequest.open:type_name -> kinegate.v1.JudgeOpen
 	56, // 63: kinegate.v1.JudgeRequest.block:type_name -> kinegate.v1.EventBlock
@@ -4448,7 +4448,7 @@ func file_kinegate_v1_selection_proto_init() {
 	}
 	file_kinegate_v1_selection_proto_msgTypes[34].OneofWrappers = []any{}
 	file_kinegate_v1_selection_proto_msgTypes[38].OneofWrappers = []any{
-		(*SelectionSource_Inline)(nil),
+		(*SelectionSource_Given)(nil),
 		(*SelectionSource_Named)(nil),
 	}
 	file_kinegate_v1_selection_proto_msgTypes[40].OneofWrappers = []any{

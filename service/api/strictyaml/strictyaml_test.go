@@ -22,8 +22,8 @@ hypotheses:
     condition:
       all_of:
         - window: {invariant_mass: {products: [eta], min_gev: 0.5, max_gev: 6e-1}}
-        - not:
-            window: {opening_angle: {first: "gamma[0]", second: "gamma[1]", max_rad: 0.1}}
+        - none_of:
+          - window: {opening_angle: {first: "gamma[0]", second: "gamma[1]", max_rad: 0.1}}
     role: ROLE_SHADOW
     prescale_count: 10
 assignment_budget_count: "1000"
@@ -39,7 +39,7 @@ func TestUnmarshalReadsTheJSONForm(t *testing.T) {
 	asJSON := `{"name":"eta","hypotheses":[{"name":"eta","reaction":"gamma p -> p eta, eta -> gamma gamma",
 	 "extra_objects":{"none":{}},"condition":{"all_of":[
 	  {"window":{"invariant_mass":{"products":["eta"],"min_gev":0.5,"max_gev":0.6}}},
-	  {"not":{"window":{"opening_angle":{"first":"gamma[0]","second":"gamma[1]","max_rad":0.1}}}}]},
+	  {"none_of":[{"window":{"opening_angle":{"first":"gamma[0]","second":"gamma[1]","max_rad":0.1}}}]}]},
 	 "role":"ROLE_SHADOW","prescale_count":"10"}],"assignment_budget_count":"1000"}`
 	if err := protojson.Unmarshal([]byte(asJSON), &want); err != nil {
 		t.Fatal(err)
@@ -59,7 +59,7 @@ func TestUnmarshalReadsTheJSONForm(t *testing.T) {
 // of the message.
 func TestUnmarshalNamesEachFault(t *testing.T) {
 	t.Parallel()
-	deep := strings.Repeat("{not: ", 80) + "{}" + strings.Repeat("}", 80)
+	deep := strings.Repeat("{none_of: [", 80) + "{}" + strings.Repeat("]}", 80)
 	for _, c := range []struct{ name, text, line, field, message string }{
 		{"empty", "", "1:1", "", "empty"},
 		{"not YAML", "name: [", "1:1", "", "not YAML: a bracket"},
@@ -128,7 +128,7 @@ func TestHintsOnCommonSlips(t *testing.T) {
 		{"typographic quotes", "[pi0]", "[\u201cpi0\u201d]", "2:54", "quotes are written"},
 		{"no window around", "{window: {invariant_mass: {products: [pi0], min_gev: 0.1}}}", "{invariant_mass: {products: [pi0]}}", "2:17", "it stands inside window"},
 		{"a list of one", "[pi0]", "pi0", "2:53", "a list of one is written [pi0]"},
-		{"a list for a set", "{window: {invariant_mass: {products: [pi0], min_gev: 0.1}}}", "[{}]", "2:16", "its fields are all_of, any_of, not, window"},
+		{"a list for a set", "{window: {invariant_mass: {products: [pi0], min_gev: 0.1}}}", "[{}]", "2:16", "its fields are all_of, any_of, none_of, window"},
 		{"a word for a set", "- condition:", "- extra_objects: any\n    condition:", "2:20", "write {any: {}}"},
 		{"a set for a list", "hypotheses:\n  - condition:", "hypotheses:\n    condition:", "2:5", `each entry starts with "-"`},
 		{"a tab", "  - condition", "\t- condition", "2:1", "plain blanks, found '\\t'"},

@@ -140,7 +140,7 @@ func bulkWork(general *kinegate.Client) []func(context.Context) error {
 	bulk := message(sixPhotons(4096))
 	judge := func(ctx context.Context) error {
 		_, err := general.Selections.JudgeBlock(ctx, &kinegatev1.JudgeBlockRequest{
-			Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: pairSelection()}},
+			Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Given{Given: pairSelection()}},
 			Block:     bulk,
 		})
 		return err

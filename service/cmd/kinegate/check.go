@@ -85,10 +85,7 @@ func (e *environment) describeCheck(name string, r *kinegatev1.CheckSelectionRes
 
 // looksAtProbability reports whether a window of the condition is on the fit probability.
 func looksAtProbability(c *kinegatev1.Condition) bool {
-	parts := slices.Concat(c.GetAllOf(), c.GetAnyOf())
-	if c.GetNot() != nil {
-		parts = append(parts, c.GetNot())
-	}
+	parts := slices.Concat(c.GetAllOf(), c.GetAnyOf(), c.GetNoneOf())
 	return c.GetWindow().GetFitProbability() != nil || slices.ContainsFunc(parts, looksAtProbability)
 }
 

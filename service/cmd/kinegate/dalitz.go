@@ -167,10 +167,10 @@ func (e *environment) printBands(r *kinegatev1.TraceDalitzBoundaryResponse, pair
 				t.Row(bands[i], gev(b.GetSqrtSGev()), "outside")
 				continue
 			}
-			t.Row(bands[i], gev(b.GetSqrtSGev()), "from", number(band.GetFrom().GetFirstSecondGev2()),
-				number(band.GetFrom().GetSecondThirdGev2()), number(band.GetFrom().GetFirstThirdGev2()))
-			t.Row("", "", "to", number(band.GetTo().GetFirstSecondGev2()),
-				number(band.GetTo().GetSecondThirdGev2()), number(band.GetTo().GetFirstThirdGev2()))
+			t.Row(bands[i], gev(b.GetSqrtSGev()), "from", number(band.GetStart().GetFirstSecondGev2()),
+				number(band.GetStart().GetSecondThirdGev2()), number(band.GetStart().GetFirstThirdGev2()))
+			t.Row("", "", "to", number(band.GetEnd().GetFirstSecondGev2()),
+				number(band.GetEnd().GetSecondThirdGev2()), number(band.GetEnd().GetFirstThirdGev2()))
 		}
 	}
 	return t.Write(e.out)

@@ -49,7 +49,7 @@ func dalitzPicture(r *kinegatev1.TraceDalitzBoundaryResponse, bands []string) (*
 		if !band.GetInside() {
 			continue
 		}
-		from, to := band.GetFrom(), band.GetTo()
+		from, to := band.GetStart(), band.GetEnd()
 		panel.Curves = append(panel.Curves, plot.Curve{
 			X:      []float64{from.GetFirstSecondGev2(), to.GetFirstSecondGev2()},
 			Y:      []float64{from.GetSecondThirdGev2(), to.GetSecondThirdGev2()},

@@ -20,7 +20,7 @@ func (e *environment) printDaughters(r *kinegatev1.DescribeDecayResponse) error 
 		row(d, "")
 	}
 	for _, g := range r.GetGranddaughters() {
-		row(g.GetLimits(), g.GetFrom())
+		row(g.GetLimits(), g.GetParent())
 	}
 	if err := t.Write(e.out); err != nil {
 		return err

@@ -149,7 +149,7 @@ func (d *demo) judge(ctx context.Context, gate *kinegate.Client, selection *kine
 	progress := text.NewProgress(d.err, d.terminal, "judging", int64(len(events)))
 	defer progress.Done()
 	open := &kinegatev1.JudgeOpen{
-		Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: selection.GetSelection()}},
+		Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Given{Given: selection.GetSelection()}},
 		Entries:   kinegatev1.EntryDetail_ENTRY_DETAIL_ACCEPTED,
 		Limits: &kinegatev1.Limits{
 			BlockEventCount: demoBlockEvents, BlockCandidateCount: candidatesPerEvent * demoBlockEvents,

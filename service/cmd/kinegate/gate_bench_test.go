@@ -161,7 +161,7 @@ func BenchmarkJudgeStream(b *testing.B) {
 	block := sixPhotons(perBlock)
 	g := startGate(b)
 	stream, err := g.client.Judge(b.Context(), &kinegatev1.JudgeOpen{
-		Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: pairSelection()}},
+		Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Given{Given: pairSelection()}},
 	}, kinegate.JudgeOptions{})
 	if err != nil {
 		b.Fatal(err)

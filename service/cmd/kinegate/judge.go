@@ -113,7 +113,7 @@ func (j *judgeRun) run(ctx context.Context, files []string) error {
 	why := &reasons{}
 	progress := text.NewProgress(j.err, j.terminal, "judging", source.size())
 	open := &kinegatev1.JudgeOpen{
-		Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: j.checked.GetSelection()}},
+		Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Given{Given: j.checked.GetSelection()}},
 		Entries:   kinegatev1.EntryDetail_ENTRY_DETAIL_ACCEPTED,
 		Limits: &kinegatev1.Limits{
 			BlockEventCount: int64(j.blockEvents), BlockCandidateCount: int64(candidatesPerEvent * j.blockEvents),

@@ -59,7 +59,7 @@ func (r *reasons) ask(ctx context.Context, j *judgeRun, client *kinegate.Client)
 			left -= size
 			ctx, cancel := j.calling(ctx)
 			reply, err := client.Selections.ExplainVerdict(ctx, &kinegatev1.ExplainVerdictRequest{
-				Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: j.checked.GetSelection()}},
+				Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Given{Given: j.checked.GetSelection()}},
 				Block:     block, EventIndex: int32(at), MaxAssignmentCount: 1,
 			})
 			cancel()
@@ -130,9 +130,6 @@ const (
 
 // meets tells whether a part of the condition holds, and the windows that make it so.
 func meets(c *kinegatev1.Condition, path string, windows map[string]*kinegatev1.WindowExplanation) (answer known, why string) {
-	// One member decides for any_of if it holds and for all_of if it does not; for the
-	// other answer it takes them all.
-	members, name, decides := c.GetAnyOf(), "any_of", yes
 	switch {
 	case c.GetWindow() != nil:
 		w := windows[path+".window"]
@@ -143,16 +140,22 @@ func meets(c *kinegatev1.Condition, path string, windows map[string]*kinegatev1.
 			return yes, "inside the window on " + w.GetLabel()
 		}
 		return no, "outside the window on " + w.GetLabel()
-	case c.GetNot() != nil:
-		answer, why = meets(c.GetNot(), path+".not", windows)
-		return -answer, why
 	case len(c.GetAllOf()) > 0:
-		members, name, decides = c.GetAllOf(), "all_of", no
+		return meetOne(c.GetAllOf(), no, path+".all_of", windows)
+	case len(c.GetNoneOf()) > 0:
+		answer, why = meetOne(c.GetNoneOf(), yes, path+".none_of", windows)
+		return -answer, why
 	}
+	return meetOne(c.GetAnyOf(), yes, path+".any_of", windows)
+}
+
+// meetOne tells what members give of which one decides by its answer; for the other answer it takes
+// them all.
+func meetOne(members []*kinegatev1.Condition, decides known, path string, windows map[string]*kinegatev1.WindowExplanation) (answer known, why string) {
 	answer = -decides
 	var all []string
 	for i, member := range members {
-		one, because := meets(member, fmt.Sprintf("%s.%s[%d]", path, name, i), windows)
+		one, because := meets(member, fmt.Sprintf("%s[%d]", path, i), windows)
 		if one == decides {
 			return decides, because
 		}

@@ -31,7 +31,7 @@ hypotheses:
         - any_of:
             - window: {name: low, invariant_mass: {products: ["pi0[0]"], max_gev: 0.001}}
             - window: {name: high, invariant_mass: {products: ["pi0[0]"], min_gev: 0.002}}
-        - not: {window: {name: forbidden, energy: {products: ["pi0[0]"], min_gev: 0}}}
+        - none_of: [{window: {name: forbidden, energy: {products: ["pi0[0]"], min_gev: 0}}}]
   - name: kaons
     reaction: "gamma p -> K+ Lambda, Lambda -> p pi-"
     beam: {tagged: {}}
@@ -68,14 +68,14 @@ hypotheses:
 	}
 }
 
-// TestUnmetConditions: the windows named are those that decide, also in groups and under not,
+// TestUnmetConditions: the windows named are those that decide, also in groups and under none_of,
 // where a window outside may do no harm and one inside may.
 func TestUnmetConditions(t *testing.T) {
 	t.Parallel()
 	window := &kinegatev1.Condition{Window: &kinegatev1.Window{}}
 	anyOf := func(of ...*kinegatev1.Condition) *kinegatev1.Condition { return &kinegatev1.Condition{AnyOf: of} }
 	allOf := func(of ...*kinegatev1.Condition) *kinegatev1.Condition { return &kinegatev1.Condition{AllOf: of} }
-	not := func(of *kinegatev1.Condition) *kinegatev1.Condition { return &kinegatev1.Condition{Not: of} }
+	noneOf := func(of ...*kinegatev1.Condition) *kinegatev1.Condition { return &kinegatev1.Condition{NoneOf: of} }
 	// Windows are a, b, c in the order of the text; a capital is inside, a dot was not looked at.
 	for _, c := range []struct {
 		name      string
@@ -85,16 +85,16 @@ func TestUnmetConditions(t *testing.T) {
 	}{
 		{"none", nil, nil, map[string]string{"": ""}},
 		{"window", window, []string{"window"}, map[string]string{"a": "outside a", "A": "", ".": ""}},
-		{"not", not(window), []string{"not.window"}, map[string]string{"a": "", "A": "inside a", ".": ""}},
+		{"none of one", noneOf(window), []string{"none_of[0].window"}, map[string]string{"a": "", "A": "inside a", ".": ""}},
 		{"group of two and one", allOf(anyOf(window, window), window),
 			[]string{"all_of[0].any_of[0].window", "all_of[0].any_of[1].window", "all_of[1].window"},
 			map[string]string{
 				"ABC": "", "aBc": "outside c", "Abc": "outside c", "abc": "outside a and outside b", "ab.": "outside a and outside b",
 				"a..": "", "a.c": "outside c", "aBC": "",
 			}},
-		{"not both", not(allOf(window, window)), []string{"not.all_of[0].window", "not.all_of[1].window"},
+		{"not both", noneOf(allOf(window, window)), []string{"none_of[0].all_of[0].window", "none_of[0].all_of[1].window"},
 			map[string]string{"AB": "inside a and inside b", "aB": "", "ab": "", "A.": "", "a.": ""}},
-		{"not either", not(anyOf(window, window)), []string{"not.any_of[0].window", "not.any_of[1].window"},
+		{"none of two", noneOf(window, window), []string{"none_of[0].window", "none_of[1].window"},
 			map[string]string{"ab": "", "aB": "inside b", "Ab": "inside a", ".B": "inside b", "a.": ""}},
 	} {
 		for seen, want := range c.answers {

@@ -18,7 +18,7 @@ const perLatencyBlock = 100
 func openGate(b *testing.B, client *kinegate.Client) *kinegate.JudgeStream {
 	b.Helper()
 	stream, err := client.Judge(b.Context(), &kinegatev1.JudgeOpen{
-		Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: pairSelection()}},
+		Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Given{Given: pairSelection()}},
 	}, kinegate.JudgeOptions{Queue: 1024})
 	if err != nil {
 		b.Fatal(err)

@@ -43,8 +43,8 @@ struct JudgeOptions {
   std::function<void(const Error&)> on_break;
 };
 
-// Inline is a selection sent along with the opening.
-v1::SelectionSource Inline(v1::Selection selection);
+// Given is a selection sent along with the opening.
+v1::SelectionSource Given(v1::Selection selection);
 // Named is a selection that the server knows; an empty digest means the newest.
 v1::SelectionSource Named(const std::string& name, const std::string& digest = "");
 

@@ -71,13 +71,14 @@ class DalitzBoundary(_message.Message):
     def __init__(self, sqrt_s_gev: _Optional[float] = ..., state: _Optional[_Union[_channel_pb2.ChannelState, str]] = ..., excess_energy_gev: _Optional[float] = ..., first_second: _Optional[_Union[_kinematics_pb2.SquareRange, _Mapping]] = ..., second_third: _Optional[_Union[_kinematics_pb2.SquareRange, _Mapping]] = ..., first_third: _Optional[_Union[_kinematics_pb2.SquareRange, _Mapping]] = ..., first_second_gev2: _Optional[bytes] = ..., second_third_gev2: _Optional[bytes] = ..., first_third_gev2: _Optional[bytes] = ..., bands: _Optional[_Iterable[_Union[DalitzBand, _Mapping]]] = ...) -> None: ...
 
 class DalitzBand(_message.Message):
-    __slots__ = ("inside", "to")
+    __slots__ = ("inside", "start", "end")
     INSIDE_FIELD_NUMBER: _ClassVar[int]
-    FROM_FIELD_NUMBER: _ClassVar[int]
-    TO_FIELD_NUMBER: _ClassVar[int]
+    START_FIELD_NUMBER: _ClassVar[int]
+    END_FIELD_NUMBER: _ClassVar[int]
     inside: bool
-    to: DalitzPoint
-    def __init__(self, inside: bool = ..., to: _Optional[_Union[DalitzPoint, _Mapping]] = ..., **kwargs) -> None: ...
+    start: DalitzPoint
+    end: DalitzPoint
+    def __init__(self, inside: bool = ..., start: _Optional[_Union[DalitzPoint, _Mapping]] = ..., end: _Optional[_Union[DalitzPoint, _Mapping]] = ...) -> None: ...
 
 class DalitzPoint(_message.Message):
     __slots__ = ("first_second_gev2", "second_third_gev2", "first_third_gev2")

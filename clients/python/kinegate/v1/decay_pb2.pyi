@@ -119,13 +119,14 @@ class DaughterLimits(_message.Message):
     def __init__(self, product: _Optional[str] = ..., mass_gev: _Optional[float] = ..., rest_frame_energy: _Optional[_Union[_kinematics_pb2.EnergyRange, _Mapping]] = ..., rest_frame_momentum: _Optional[_Union[_kinematics_pb2.EnergyRange, _Mapping]] = ..., laboratory_energy: _Optional[_Union[_kinematics_pb2.EnergyRange, _Mapping]] = ..., laboratory_momentum: _Optional[_Union[_kinematics_pb2.EnergyRange, _Mapping]] = ..., laboratory_angle: _Optional[_Union[_kinematics_pb2.AngleRange, _Mapping]] = ..., laboratory_energy_density_per_gev: _Optional[float] = ..., double_valued: bool = ...) -> None: ...
 
 class GranddaughterLimits(_message.Message):
-    __slots__ = ("limits", "rest_frame_energy_density_per_gev")
+    __slots__ = ("limits", "parent", "rest_frame_energy_density_per_gev")
     LIMITS_FIELD_NUMBER: _ClassVar[int]
-    FROM_FIELD_NUMBER: _ClassVar[int]
+    PARENT_FIELD_NUMBER: _ClassVar[int]
     REST_FRAME_ENERGY_DENSITY_PER_GEV_FIELD_NUMBER: _ClassVar[int]
     limits: DaughterLimits
+    parent: str
     rest_frame_energy_density_per_gev: float
-    def __init__(self, limits: _Optional[_Union[DaughterLimits, _Mapping]] = ..., rest_frame_energy_density_per_gev: _Optional[float] = ..., **kwargs) -> None: ...
+    def __init__(self, limits: _Optional[_Union[DaughterLimits, _Mapping]] = ..., parent: _Optional[str] = ..., rest_frame_energy_density_per_gev: _Optional[float] = ...) -> None: ...
 
 class OpeningAngleDensity(_message.Message):
     __slots__ = ("density_per_rad", "fraction_below")

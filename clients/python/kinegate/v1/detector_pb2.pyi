@@ -129,13 +129,14 @@ class Tracker(_message.Message):
     def __init__(self, theta: _Optional[_Union[PolarRange, _Mapping]] = ..., momentum_min_gev: _Optional[float] = ..., constant: _Optional[float] = ..., per_gev: _Optional[float] = ..., angle_sigma_rad: _Optional[float] = ..., efficiency: _Optional[float] = ..., identify: bool = ..., confusions: _Optional[_Iterable[_Union[SpeciesConfusion, _Mapping]]] = ...) -> None: ...
 
 class SpeciesConfusion(_message.Message):
-    __slots__ = ("to", "probability")
-    FROM_FIELD_NUMBER: _ClassVar[int]
-    TO_FIELD_NUMBER: _ClassVar[int]
+    __slots__ = ("species", "taken_for", "probability")
+    SPECIES_FIELD_NUMBER: _ClassVar[int]
+    TAKEN_FOR_FIELD_NUMBER: _ClassVar[int]
     PROBABILITY_FIELD_NUMBER: _ClassVar[int]
-    to: Species
+    species: Species
+    taken_for: Species
     probability: float
-    def __init__(self, to: _Optional[_Union[Species, str]] = ..., probability: _Optional[float] = ..., **kwargs) -> None: ...
+    def __init__(self, species: _Optional[_Union[Species, str]] = ..., taken_for: _Optional[_Union[Species, str]] = ..., probability: _Optional[float] = ...) -> None: ...
 
 class DirectionDetector(_message.Message):
     __slots__ = ("theta", "momentum_min_gev", "angle_sigma_rad", "efficiency")

@@ -182,15 +182,16 @@ class SoftPhotons(_message.Message):
     def __init__(self, max_count: _Optional[int] = ..., max_energy_gev: _Optional[float] = ...) -> None: ...
 
 class Condition(_message.Message):
-    __slots__ = ("window", "all_of", "any_of")
+    __slots__ = ("window", "all_of", "any_of", "none_of")
     WINDOW_FIELD_NUMBER: _ClassVar[int]
     ALL_OF_FIELD_NUMBER: _ClassVar[int]
     ANY_OF_FIELD_NUMBER: _ClassVar[int]
-    NOT_FIELD_NUMBER: _ClassVar[int]
+    NONE_OF_FIELD_NUMBER: _ClassVar[int]
     window: Window
     all_of: _containers.RepeatedCompositeFieldContainer[Condition]
     any_of: _containers.RepeatedCompositeFieldContainer[Condition]
-    def __init__(self, window: _Optional[_Union[Window, _Mapping]] = ..., all_of: _Optional[_Iterable[_Union[Condition, _Mapping]]] = ..., any_of: _Optional[_Iterable[_Union[Condition, _Mapping]]] = ..., **kwargs) -> None: ...
+    none_of: _containers.RepeatedCompositeFieldContainer[Condition]
+    def __init__(self, window: _Optional[_Union[Window, _Mapping]] = ..., all_of: _Optional[_Iterable[_Union[Condition, _Mapping]]] = ..., any_of: _Optional[_Iterable[_Union[Condition, _Mapping]]] = ..., none_of: _Optional[_Iterable[_Union[Condition, _Mapping]]] = ...) -> None: ...
 
 class Window(_message.Message):
     __slots__ = ("name", "invariant_mass", "invariant_mass_squared", "missing_mass", "missing_mass_squared", "energy", "momentum", "transverse_momentum", "angle", "opening_angle", "coplanarity", "missing_direction", "momentum_transfer", "momentum_transfer_prime", "time_difference", "unused_photon_energy", "vertex_z", "flight_distance", "pointing", "fit_probability")
@@ -473,12 +474,12 @@ class ExplainVerdictRequest(_message.Message):
     def __init__(self, selection: _Optional[_Union[SelectionSource, _Mapping]] = ..., block: _Optional[_Union[_event_pb2.EventBlock, _Mapping]] = ..., event_index: _Optional[int] = ..., max_assignment_count: _Optional[int] = ...) -> None: ...
 
 class SelectionSource(_message.Message):
-    __slots__ = ("inline", "named")
-    INLINE_FIELD_NUMBER: _ClassVar[int]
+    __slots__ = ("given", "named")
+    GIVEN_FIELD_NUMBER: _ClassVar[int]
     NAMED_FIELD_NUMBER: _ClassVar[int]
-    inline: Selection
+    given: Selection
     named: SelectionReference
-    def __init__(self, inline: _Optional[_Union[Selection, _Mapping]] = ..., named: _Optional[_Union[SelectionReference, _Mapping]] = ...) -> None: ...
+    def __init__(self, given: _Optional[_Union[Selection, _Mapping]] = ..., named: _Optional[_Union[SelectionReference, _Mapping]] = ...) -> None: ...
 
 class SelectionReference(_message.Message):
     __slots__ = ("name", "selection_digest")

@@ -122,8 +122,8 @@ func Detector() *kinegatev1.Detector {
 			Efficiency:    &tracker,
 			Identify:      true,
 			Confusions: []*kinegatev1.SpeciesConfusion{
-				{From: kinegatev1.Species_SPECIES_PROTON, To: kinegatev1.Species_SPECIES_PION, Probability: 0.05},
-				{From: kinegatev1.Species_SPECIES_PION, To: kinegatev1.Species_SPECIES_PROTON, Probability: 0.05},
+				{Species: kinegatev1.Species_SPECIES_PROTON, TakenFor: kinegatev1.Species_SPECIES_PION, Probability: 0.05},
+				{Species: kinegatev1.Species_SPECIES_PION, TakenFor: kinegatev1.Species_SPECIES_PROTON, Probability: 0.05},
 			},
 		},
 		Recoil: &kinegatev1.DirectionDetector{
