@@ -40,12 +40,10 @@ type PhaseSpace struct {
 	// frame, and share its energy there over the rest's mass.
 	rest, inverse, split, share [MaxBodies]float64
 	constant                    float64
-	// uniform, sorted and directed are working memory of a point: its random
-	// numbers, the bits of those that give the masses in rising order, and the
-	// momentum of each split.
-	uniform  [3 * MaxBodies]float64
-	sorted   [MaxBodies]uint64
-	directed [MaxBodies]momentum.Three
+	// uniform and sorted are working memory of a point: its random numbers, and the
+	// bits of those that give the masses in rising order.
+	uniform [3 * MaxBodies]float64
+	sorted  [MaxBodies]uint64
 }
 
 // NewPhaseSpace returns the phase space of particles with the given masses in
@@ -96,8 +94,7 @@ func (ps *PhaseSpace) Draw(s *random.Stream, total momentum.Four, m float64, out
 	s.Uniforms(ps.uniform[:3*n-4])
 	w := ps.masses(m)
 	if w > 0 {
-		ps.direct(n-2, n-1)
-		ps.place(total, m, out)
+		ps.place(total, m, out, ps.uniform[n-2:3*n-4], nil)
 	}
 	return w
 }
@@ -191,32 +188,28 @@ func (ps *PhaseSpace) drawPlaces(s *random.Stream, total momentum.Four, m float6
 	splits := ps.n - 1
 	if first != nil {
 		splits--
-		ps.directed[splits+1] = first.Scale(ps.split[splits+1])
 	}
 	s.Uniforms(ps.uniform[:2*splits])
-	ps.direct(0, splits)
-	ps.place(total, m, out)
+	ps.place(total, m, out, ps.uniform[:2*splits], first)
 }
 
-// direct gives the momenta of the first splits a random direction each, from two
-// uniform numbers a split.
-func (ps *PhaseSpace) direct(from, splits int) {
-	u := ps.uniform[from : from+2*splits]
-	for k := 1; k <= splits && k < MaxBodies; k++ {
-		sin, cos := num.SincosTurn(u[2*k-1])
-		ps.directed[k] = onSphere(u[2*k-2], sin, cos, ps.split[k])
-	}
-}
-
-// place writes the four-momenta for the masses and directions set before.
-func (ps *PhaseSpace) place(total momentum.Four, m float64, out []momentum.Four) {
+// place writes the four-momenta for the masses set before and for directions, two uniform
+// numbers a split and first for the last of them where it is given. A direction is made
+// where it is used: the processor then works on it while it waits for the boost before.
+func (ps *PhaseSpace) place(total momentum.Four, m float64, out []momentum.Four, u []float64, first *momentum.Three) {
 	last := ps.n - 1
 	if last >= MaxBodies || last >= len(out) {
 		return // never, but then the compiler checks no index of the loop
 	}
 	px, py, pz, e := total.P.X, total.P.Y, total.P.Z, total.E
 	for k := last; k > 0; k-- {
-		q, share, inverse := &ps.directed[k], ps.share[k], ps.inverse[k]
+		split, share, inverse := ps.split[k], ps.share[k], ps.inverse[k]
+		var q momentum.Three
+		if first == nil {
+			q = isotropic(u[2*k-2], u[2*k-1], split)
+		} else {
+			q, first = first.Scale(split), nil
+		}
 		// Boost of q with the energy e_k along the total's own motion,
 		// q + P ((P.q)/(E + M) + e_k)/M, and its energy (E e_k + P.q)/M. The division
 		// does not wait for P.q.
@@ -242,16 +235,10 @@ func shell(x, y, z, square float64) float64 {
 	return math.Sqrt(float64(x*x) + float64(y*y) + (float64(z*z) + square))
 }
 
-// isotropic is the vector of length p in the direction that two uniform numbers
-// give.
+// isotropic is the vector of length p in the direction that two uniform numbers give,
+// with cos theta = 2u - 1, sin theta = 2 sqrt(u (1 - u)) and v of a turn as its azimuth.
 func isotropic(u, v, p float64) momentum.Three {
 	sin, cos := num.SincosTurn(v)
-	return onSphere(u, sin, cos, p)
-}
-
-// onSphere is the vector of length p with cos theta = 2u - 1, sin theta =
-// 2 sqrt(u (1 - u)) and the sine and cosine of its azimuth.
-func onSphere(u, sin, cos, p float64) momentum.Three {
 	transverse := 2 * p * math.Sqrt(u*(1-u))
 	return momentum.Three{X: transverse * cos, Y: transverse * sin, Z: p * (u - (1 - u))}
 }

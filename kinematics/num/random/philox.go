@@ -41,16 +41,42 @@ func newSchedule(k0, k1 uint64) schedule {
 	return s
 }
 
+// round is one round with two words of the key.
+func round(c0, c1, c2, c3, k0, k1 uint64) (w0, w1, w2, w3 uint64) {
+	hi0, lo0 := bits.Mul64(multiplier0, c0)
+	hi1, lo1 := bits.Mul64(multiplier1, c2)
+	return hi1 ^ c1 ^ k0, lo1, hi0 ^ c3 ^ k1, lo0
+}
+
 // rounds is Philox with all words in registers.
 func (s *schedule) rounds(c0, c1, c2, c3 uint64) (w0, w1, w2, w3 uint64) {
 	for i := range s {
 		k := &s[i]
-		hi0, lo0 := bits.Mul64(multiplier0, c0)
-		hi1, lo1 := bits.Mul64(multiplier1, c2)
-		c0, c2 = hi1^c1^k[0], hi0^c3^k[1]
-		hi2, lo2 := bits.Mul64(multiplier0, c0)
-		hi3, lo3 := bits.Mul64(multiplier1, c2)
-		c0, c1, c2, c3 = hi3^lo1^k[2], lo3, hi2^lo0^k[3], lo2
+		c0, c1, c2, c3 = round(c0, c1, c2, c3, k[0], k[1])
+		c0, c1, c2, c3 = round(c0, c1, c2, c3, k[2], k[3])
 	}
 	return c0, c1, c2, c3
+}
+
+// pair is rounds for the counters (block, event, 0, 0) and (block+1, event, 0, 0) side by
+// side: the processor multiplies for the one while it waits for the other. The first two
+// rounds are written out, as zeros leave little of them and half of that is the same for
+// both.
+func (s *schedule) pair(block, event uint64) (a0, a1, a2, a3, b0, b1, b2, b3 uint64) {
+	k := &s[0]
+	hi, lo := bits.Mul64(multiplier0, event^k[0])
+	ah, al := bits.Mul64(multiplier0, block)
+	bh, bl := bits.Mul64(multiplier0, block+1)
+	ah, a1 = bits.Mul64(multiplier1, ah^k[1])
+	bh, b1 = bits.Mul64(multiplier1, bh^k[1])
+	a0, a2, a3 = ah^k[2], hi^al^k[3], lo
+	b0, b2, b3 = bh^k[2], hi^bl^k[3], lo
+	for i := 1; i < len(s); i++ {
+		k := &s[i]
+		a0, a1, a2, a3 = round(a0, a1, a2, a3, k[0], k[1])
+		b0, b1, b2, b3 = round(b0, b1, b2, b3, k[0], k[1])
+		a0, a1, a2, a3 = round(a0, a1, a2, a3, k[2], k[3])
+		b0, b1, b2, b3 = round(b0, b1, b2, b3, k[2], k[3])
+	}
+	return a0, a1, a2, a3, b0, b1, b2, b3
 }

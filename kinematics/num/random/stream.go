@@ -74,6 +74,13 @@ func (s *Stream) Uniforms(u []float64) {
 		u[0] = s.Uniform()
 		u = u[1:]
 	}
+	for len(u) >= 8 {
+		a0, a1, a2, a3, b0, b1, b2, b3 := s.keys.pair(s.block, s.event)
+		s.block += 2
+		u[0], u[1], u[2], u[3] = fraction(a0), fraction(a1), fraction(a2), fraction(a3)
+		u[4], u[5], u[6], u[7] = fraction(b0), fraction(b1), fraction(b2), fraction(b3)
+		u = u[8:]
+	}
 	for len(u) >= 4 {
 		w0, w1, w2, w3 := s.keys.rounds(s.block, s.event, 0, 0)
 		s.block++
