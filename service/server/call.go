@@ -37,6 +37,8 @@ type call struct {
 	requestID string   // the caller's if it is short and plain, else the reference
 	names     []string // URIs and DNS names of the caller's certificate
 	caller    string   // whose quota it counts against
+	shared    *front   // whose large requests are bounded; nil for none
+	held      int64    // bytes of its request that count there
 	trace     trace
 	cutFor    atomic.Pointer[api.Failure] // why it was ended from outside; nil if it was not
 	headed    sync.Once
@@ -98,6 +100,9 @@ func (c *call) receive(in *incoming) error {
 	case length > int64(c.limits.MessageBytes):
 		return tooLarge(length, int64(c.limits.MessageBytes))
 	}
+	if err := c.hold(length); err != nil {
+		return err
+	}
 	data, err := c.transport.Read(int(length))
 	if errors.Is(err, io.EOF) && length > 0 {
 		err = io.ErrUnexpectedEOF // the caller ended its side inside a message
@@ -115,6 +120,19 @@ func (c *call) receive(in *incoming) error {
 	}
 	c.received.Add(1)
 	c.receivedBytes.Add(length)
+	return nil
+}
+
+// hold takes room for a message that is about to be read.
+func (c *call) hold(length int64) error {
+	if c.shared == nil {
+		return nil
+	}
+	taken, err := c.shared.holding.enter(length)
+	if err != nil {
+		return c.shared.refuse(err)
+	}
+	c.held += taken
 	return nil
 }
 

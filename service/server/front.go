@@ -33,6 +33,7 @@ type desk struct {
 	current    *atomic.Pointer[inUse]
 	streams    *openStreams
 	pressure   *pressure
+	holding    *holding
 	leaving    <-chan struct{}
 
 	nonce string
@@ -241,6 +242,9 @@ func (f *front) begin(method, label string, stream grpc.ServerStream) *call {
 		names: names(ctx), trace: traceOf(ctx),
 	}
 	c.caller = caller(ctx, c.identity())
+	if f.rules.shared {
+		c.shared = f
+	}
 	if c.requestID = plainID(ctx); c.requestID == "" {
 		c.requestID = c.reference
 	}
@@ -320,6 +324,7 @@ func (f *front) release(c *call) {
 	f.open.Add(-1)
 	if f.rules.shared {
 		f.quota.leave(c.caller)
+		f.holding.leave(c.held)
 	}
 }
 

@@ -39,6 +39,7 @@ type Server struct {
 	current      atomic.Pointer[inUse]
 	streams      openStreams
 	pressure     pressure
+	holding      *holding
 	fronts       map[Listener]*front
 	webs         map[Listener]*http.Server
 	places       places
@@ -97,6 +98,7 @@ func New(options Options, deps Deps) (*Server, error) {
 	}
 	s.current.Store(use)
 	s.pressure.limit = int64(options.MemoryLimit)
+	s.holding = newHolding(&s.options)
 	metrics.SettingsReloaded(true, time.Now())
 	metrics.WorkSlots(options.slots())
 	s.health = newHealth(s.leaving)
@@ -116,7 +118,7 @@ func New(options Options, deps Deps) (*Server, error) {
 func (s *Server) build() {
 	o := &s.options
 	d := &desk{
-		limits: o.limits(), streamIdle: o.StreamIdle, metrics: s.metrics, current: &s.current, streams: &s.streams, pressure: &s.pressure,
+		limits: o.limits(), streamIdle: o.StreamIdle, metrics: s.metrics, current: &s.current, streams: &s.streams, pressure: &s.pressure, holding: s.holding,
 		leaving: s.leaving, nonce: newNonce(),
 	}
 	gate := rules{most: func(o *Options) int { return o.GateStreams }, private: true}

@@ -96,7 +96,7 @@ func sizeSettings() []Setting {
 			func(o *Options) Value { return size(&o.CreditLimit, 64*kibi, gibi) }},
 		{"credit_pool", "64MiB", "Byte credit of all judge streams together; a stream that finds none left is refused.",
 			func(o *Options) Value { return size(&o.CreditPool, 64*kibi, 64*gibi) }},
-		{"memory_limit", "0", "Memory that the process may use, for sizes and for refusing calls above 85 % of it; 0 takes the limit of its control group.",
+		{"memory_limit", "0", "Memory that the process may use; calls above 85 % of it and large requests above a sixteenth are refused; 0 takes that of its control group.",
 			func(o *Options) Value { return size(&o.MemoryLimit, 0, 1024*gibi) }},
 		{"connections", "1024", "Most open connections on the two rpc listeners together.",
 			func(o *Options) Value { return count(&o.Connections, 1<<20) }},

@@ -176,7 +176,10 @@ func resident(t *testing.T, pid int, key string) int64 {
 	if err != nil {
 		t.Skip("no /proc")
 	}
-	_, rest, _ := strings.Cut(string(data), key+":")
+	_, rest, found := strings.Cut(string(data), key+":")
+	if !found {
+		t.Fatal("the process is gone") // and nobody has waited for it yet
+	}
 	n, err := strconv.ParseInt(strings.Fields(rest)[0], 10, 64)
 	if err != nil {
 		t.Fatal(err)
