@@ -25,7 +25,8 @@ const (
 	// Checks of the block never give it.
 	Expired
 	// BudgetUsed marks an event judged in part: the work budget ended before every
-	// assignment had been tried. Hypotheses that accept do accept.
+	// assignment had been tried. Hypotheses that accept do accept, and the gate opens for
+	// those that were not finished too, unless a veto accepts.
 	BudgetUsed
 	statusCount
 )

@@ -26,6 +26,9 @@ const (
 	Rejected
 	// FitFailed marks the same where its fit did not converge.
 	FitFailed
+	// Unfinished marks a hypothesis of which the work budget left assignments untried and
+	// none that was tried passes: with the best of those that were fitted, or with none.
+	Unfinished
 )
 
 // FitStatus says how the fit of an entry ended. The numbers are those of the contract
@@ -37,9 +40,10 @@ const NoFit FitStatus = 0
 
 // VerdictBlock holds the verdicts on one Block, event for event.
 type VerdictBlock struct {
-	// Status of each event; only Good events are judged.
+	// Status of each event; only Good events are judged, and those of BudgetUsed in part.
 	Status []Status
-	// Gate is the gate's decision per event, after prescale, veto and shadow.
+	// Gate is the gate's decision per event, after prescale, veto and shadow; clear for
+	// events that were not judged.
 	Gate Bits
 	// Accepted is, per hypothesis, one bit per event before prescale, veto and
 	// shadow.

@@ -45,7 +45,19 @@ func Compile(s *Selection, table *particle.Table) (*Program, error) {
 	if err := c.faults.Err(); err != nil {
 		return nil, err
 	}
+	c.program.setOrder()
 	return c.program, nil
+}
+
+// setOrder puts the vetoes in front of the other hypotheses.
+func (p *Program) setOrder() {
+	for _, vetoes := range []bool{true, false} {
+		for h := range p.hypotheses {
+			if (p.hypotheses[h].role == Veto) == vetoes {
+				p.order = append(p.order, h)
+			}
+		}
+	}
 }
 
 // compiler makes a program and collects faults.

@@ -65,7 +65,9 @@
 // evaluated as soon as every product they need has its object, so that an
 // assignment that fails early is never completed. The fit comes last. The work budget
 // counts what was tried: complete assignments, once per beam candidate, and incomplete
-// ones that ended early.
+// ones that a window ended. Vetoes are tested first, then the other hypotheses in their
+// order; where the budget ends the gate opens for a hypothesis that was not finished as
+// for one that accepts, so that nothing is lost, unless a veto accepts.
 //
 // A hypothesis with a fit accepts no assignment whose fit does not converge, and ranks
 // by the probability of the fit unless it says otherwise.

@@ -23,6 +23,8 @@ type Explanation struct {
 type HypothesisExplanation struct {
 	// Accepted says that an assignment passes, Kept that the prescale keeps the event.
 	Accepted, Kept bool
+	// Unfinished says that the work budget was used up before every assignment was tried.
+	Unfinished bool
 	// Obstacle says why no assignment could be tried; empty where one was.
 	Obstacle string
 	// Tried counts the assignments, each once for each beam candidate, also those that a
@@ -135,32 +137,27 @@ func (w *Worker) Explain(block *event.Block, i, limit int) Explanation {
 	if e.Status != event.Good && e.Status != event.BudgetUsed {
 		return e
 	}
-	w.block, w.left, w.stopped = block, w.program.budget, false
-	exhausted := false
-	for h := range w.program.hypotheses {
-		x := HypothesisExplanation{
+	w.block, w.stopped = block, false
+	w.refill()
+	e.Hypotheses = make([]HypothesisExplanation, len(w.program.hypotheses))
+	for _, h := range w.program.order {
+		e.Hypotheses[h] = HypothesisExplanation{
 			Accepted: out.Accepted[h].Get(0), Kept: w.program.hypotheses[h].kept(block.EventIDs[i]),
 		}
-		if exhausted {
-			x.Obstacle = "the work budget was used up before this hypothesis"
-		} else {
-			exhausted = !w.explainHypothesis(h, limit, &x)
-		}
-		e.Hypotheses = append(e.Hypotheses, x)
+		w.explainHypothesis(h, limit, &e.Hypotheses[h])
 	}
 	w.search.witness, w.block = nil, nil
 	return e
 }
 
-// explainHypothesis tests the event against hypothesis h again, with a witness. It returns
-// false if the work budget ended before all was tried.
-func (w *Worker) explainHypothesis(h, limit int, x *HypothesisExplanation) bool {
+// explainHypothesis tests the event against hypothesis h again, with a witness.
+func (w *Worker) explainHypothesis(h, limit int, x *HypothesisExplanation) {
 	hypothesis := &w.program.hypotheses[h]
 	w.hypothesis, w.number = hypothesis, h
 	w.used = 0
 	w.search = search{}
 	if x.Obstacle = w.obstacle(); x.Obstacle != "" {
-		return true
+		return
 	}
 	w.prepare()
 	var trials []trial
@@ -189,6 +186,10 @@ func (w *Worker) explainHypothesis(h, limit int, x *HypothesisExplanation) bool 
 		w.try()
 		w.search.witness = nil
 	}
+	if x.Unfinished = w.search.exhausted; x.Unfinished && x.Tried == 0 {
+		x.Obstacle = "the work budget was used up before this hypothesis"
+		return
+	}
 	for k := range w.candidates {
 		if !w.candidates[k].open {
 			add(trial{candidate: k})
@@ -197,7 +198,6 @@ func (w *Worker) explainHypothesis(h, limit int, x *HypothesisExplanation) bool 
 	for k := range trials {
 		x.Assignments = append(x.Assignments, w.explainTrial(&trials[k]))
 	}
-	return !w.search.exhausted
 }
 
 // candidateNumber is the place of a candidate in the list.

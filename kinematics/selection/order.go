@@ -25,7 +25,9 @@ func (d *drafter) order() {
 		d.orderDaughters(d.reaction.Products[i].Daughters, plain)
 	}
 	for k := range d.out.slots {
-		d.out.slots[k].lowest = d.leads(k)
+		s := &d.out.slots[k]
+		s.higher = d.followers(k)
+		s.lowest = s.higher == len(d.out.slots)-1-k
 	}
 }
 
@@ -80,18 +82,21 @@ func (d *drafter) exchange(a, b int) []uint8 {
 	return slots
 }
 
-// leads reports whether every slot after k must have a higher object than k.
-func (d *drafter) leads(k int) bool {
+// followers counts the slots after k that must have a higher object than k. They have its
+// signature: only first slots of identical products are ordered, and what such a slot
+// leads within its own product is ordered for the same reason.
+func (d *drafter) followers(k int) int {
+	count := 0
 	for later := k + 1; later < len(d.out.slots); later++ {
 		before := later
 		for before > k {
 			before = d.out.slots[before].after
 		}
-		if before != k {
-			return false
+		if before == k {
+			count++
 		}
 	}
-	return true
+	return count
 }
 
 // sameFit reports whether the fit stays the same when two identical products are

@@ -8,6 +8,8 @@ import (
 type Program struct {
 	budget     int64
 	hypotheses []hypothesis
+	// order is that in which hypotheses are tested: vetoes before the others.
+	order []int
 	// groups are the hypotheses of each declared group, ascending.
 	groups [][]int
 	// kinds are the mass hypotheses of all slots, signatures what their objects must
@@ -125,7 +127,9 @@ type slot struct {
 	// after is a slot that must have a lower object, or -1: the canonical order of
 	// identical products.
 	after int
-	// lowest says that every later slot must have a higher object.
+	// higher is the number of later slots that must have a higher object, all of them of
+	// the same signature, and lowest says that every later slot is one of them.
+	higher int
 	lowest bool
 }
 

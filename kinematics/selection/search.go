@@ -15,7 +15,7 @@ type search struct {
 	must set
 	// possible looks for the best possible assignment, whatever the condition says.
 	possible bool
-	// tried counts complete assignments and incomplete ones that a check ended.
+	// tried counts complete assignments and incomplete ones that a window ended.
 	tried int32
 	// witness, unless it is nil, is told of every assignment that is tried: the candidate,
 	// nil where a window ended it before, the number of slots that have objects, whether
@@ -29,31 +29,30 @@ type search struct {
 	objects [MaxProducts]uint8
 }
 
-// test tests the event against hypothesis h and appends its entries. It returns false
-// if the work budget ended before all was tried.
-func (w *Worker) test(h int, entries *event.Entries) bool {
+// test tests the event against hypothesis h, appends its entries, and notes its rank and
+// whether the work budget ended before all was tried.
+func (w *Worker) test(h int, entries *event.Entries) {
 	hypothesis := &w.program.hypotheses[h]
 	w.hypothesis, w.number = hypothesis, h
+	w.rank[h], w.unfinished[h] = math.NaN(), false
 	w.used = 0
 	w.search = search{}
 	if !w.findCandidates() || !w.allowExtra() || !w.fits() {
-		return true
+		return
 	}
 	w.prepare()
-	open := w.openCandidates()
-	if open {
+	if w.openCandidates() {
 		w.try()
 	}
-	finished := !w.search.exhausted
+	w.unfinished[h] = w.search.exhausted
 	for i := range w.candidates {
 		if c := &w.candidates[i]; c.accepted && !(w.rank[h] <= c.standing(hypothesis)) {
 			w.rank[h] = c.standing(hypothesis)
 		}
 	}
 	if entries != nil {
-		w.report(h, finished, entries)
+		w.report(h, entries)
 	}
-	return finished
 }
 
 // allowExtra applies the rule on extra objects: how many there are is known, since
@@ -133,7 +132,8 @@ func (w *Worker) place(k int) bool {
 		return w.complete()
 	}
 	slot := &h.slots[k]
-	choices := w.matching[s.signatures[k]] &^ w.used
+	free := w.matching[s.signatures[k]] &^ w.used
+	choices := free
 	if slot.after >= 0 {
 		choices &= above(int(w.assigned[slot.after]))
 	}
@@ -146,22 +146,24 @@ func (w *Worker) place(k int) bool {
 		}
 	}
 	if choices == 0 {
-		w.left-- // a way that ends here is work too
+		return w.deadEnd()
 	}
 	for ; choices != 0; choices &= choices - 1 {
-		if w.left <= 0 || w.interrupted(1) {
+		if w.interrupted(1) {
 			s.exhausted = true
 			return false
 		}
 		object := choices.lowest()
+		if (free & above(object)).count() < slot.higher {
+			break // the later slots that need a higher object would lack one
+		}
 		w.assigned[k] = uint8(object) //nolint:gosec // below maxObjects
 		w.used |= 1 << object
-		more := true
+		var more bool
 		if s.possible || w.all(h.steps[k]) {
 			more = w.place(k + 1)
-		} else {
+		} else if more = w.spend(); more {
 			s.tried++
-			w.left--
 			s.tell(nil, k+1, false, 0)
 		}
 		w.used &^= 1 << object
@@ -169,6 +171,39 @@ func (w *Worker) place(k int) bool {
 			return false
 		}
 	}
+	return true
+}
+
+// deadEndsPerAssignment is how many ways may end for want of an object for each assignment
+// of the budget. Sixteen take less time than one assignment with a fit, and place looks
+// ahead, so that only products that compete for the same objects make any.
+const deadEndsPerAssignment = 16
+
+// refill gives the worker the whole work budget. It counts assignments that are tried; the
+// ways that end before there is one to try are bounded apart from it.
+func (w *Worker) refill() {
+	w.left = w.program.budget
+	w.ends = deadEndsPerAssignment * w.left
+}
+
+// spend takes an assignment from the work budget. It returns false where none is left.
+func (w *Worker) spend() bool {
+	if w.left <= 0 {
+		w.search.exhausted = true
+		return false
+	}
+	w.left--
+	return true
+}
+
+// deadEnd counts a way that ends for want of an object. It returns false where the search
+// has had too many.
+func (w *Worker) deadEnd() bool {
+	if w.ends <= 0 {
+		w.search.exhausted = true
+		return false
+	}
+	w.ends--
 	return true
 }
 
@@ -196,24 +231,26 @@ func (w *Worker) complete() bool {
 	h, s := w.hypothesis, &w.search
 	rank := w.distance()
 	if s.possible {
-		w.left--
+		if !w.spend() {
+			return false
+		}
 		if !s.found || rank < s.rank {
 			s.found, s.rank, s.objects = true, rank, w.assigned
 		}
 		return len(h.ranking) > 0
 	}
-	s.tried++
+	if w.left > 0 {
+		s.tried++
+	}
 	waiting := h.ranked()
 	for i := range w.candidates {
 		c := &w.candidates[i]
 		if !c.open {
 			continue
 		}
-		if w.left <= 0 {
-			s.exhausted = true
+		if !w.spend() {
 			return false
 		}
-		w.left--
 		if c.accepted && !h.byFit && !(rank < c.rank) && s.witness == nil {
 			continue
 		}
@@ -302,7 +339,7 @@ func (w *Worker) distance() float64 {
 }
 
 // report appends the entries of hypothesis h, one per candidate.
-func (w *Worker) report(h int, finished bool, entries *event.Entries) {
+func (w *Worker) report(h int, entries *event.Entries) {
 	tried := w.search.tried
 	possible := false
 	for i := range w.candidates {
@@ -314,12 +351,17 @@ func (w *Worker) report(h int, finished bool, entries *event.Entries) {
 		w.enter(c)
 		w.assigned, w.fit = c.objects, c.fit
 		if !c.accepted {
-			if w.detail != AllEntries || !finished {
+			if w.detail != AllEntries {
 				continue
 			}
 			switch {
 			case c.tried:
 				w.assigned, w.fit = c.nearest, c.failed
+			case w.unfinished[h]:
+				row.Status = event.Unfinished
+				w.describeNothing(&row)
+				entries.Append(row)
+				continue
 			case w.lookForPossible(&possible):
 				w.enter(c)
 				if w.assigned = w.search.objects; w.hypothesis.fit != nil {
@@ -328,15 +370,23 @@ func (w *Worker) report(h int, finished bool, entries *event.Entries) {
 			default:
 				continue
 			}
-			row.Status = event.Rejected
-			if w.hypothesis.fit != nil && w.fit.Status != constraint.Converged {
-				row.Status = event.FitFailed
-			}
+			row.Status = w.statusOfFailed(h)
 		}
 		row.Fit = w.fitOfEntry()
 		w.describe(&row)
 		entries.Append(row)
 	}
+}
+
+// statusOfFailed is the status of an entry without an assignment that passes.
+func (w *Worker) statusOfFailed(h int) event.EntryStatus {
+	switch {
+	case w.unfinished[h]:
+		return event.Unfinished
+	case w.hypothesis.fit != nil && w.fit.Status != constraint.Converged:
+		return event.FitFailed
+	}
+	return event.Rejected
 }
 
 // lookForPossible finds the best possible assignment, once, and reports whether there
@@ -345,14 +395,27 @@ func (w *Worker) report(h int, finished bool, entries *event.Entries) {
 func (w *Worker) lookForPossible(done *bool) bool {
 	if !*done {
 		*done = true
-		must, left := w.search.must, w.left
+		must, left, ends := w.search.must, w.left, w.ends
 		w.search = search{must: must, possible: true}
 		w.used = 0
-		w.left = w.program.budget
+		w.refill()
 		w.try()
-		w.left = left
+		w.left, w.ends = left, ends
 	}
 	return w.search.found
+}
+
+// describeNothing sets no object, no observable and no fit in an entry.
+func (w *Worker) describeNothing(row *event.Entry) {
+	w.assignment, w.values, w.spreads = w.assignment[:0], w.values[:0], w.spreads[:0]
+	for range w.hypothesis.products {
+		w.assignment = append(w.assignment, -1)
+	}
+	for range w.hypothesis.record {
+		w.values, w.spreads = append(w.values, math.NaN()), append(w.spreads, math.NaN())
+	}
+	row.Assignment, row.Observables, row.Uncertainties = w.assignment, w.values, w.spreads
+	row.Fit = event.Fit{Status: event.NoFit, ChiSquare: math.NaN(), Probability: math.NaN()}
 }
 
 // describe sets the assignment and the recorded observables of an entry.

@@ -35,7 +35,7 @@ type Selection struct {
 	// Groups of comparable hypotheses; only within a group is one best.
 	Groups []Group
 	// AssignmentBudget is the most assignments to try for one event over all
-	// hypotheses and beam candidates; 0 means DefaultBudget.
+	// hypotheses and beam candidates, vetoes first; 0 means DefaultBudget.
 	AssignmentBudget int64
 }
 

@@ -2,6 +2,7 @@ package selection
 
 import (
 	"math"
+	"slices"
 
 	"example.org/kinegate/kinematics/constraint"
 	"example.org/kinegate/kinematics/event"
@@ -39,11 +40,12 @@ type Worker struct {
 	tables  []table
 	// matching are the objects that fit each signature.
 	matching []set
-	// left is what is left of the work budget, work counts steps of searches, and
-	// stopped says that Stop ended the judging.
-	left    int64
-	work    uint
-	stopped bool
+	// left is what is left of the work budget, and ends of the ways that may end for want
+	// of an object; work counts steps of searches, and stopped says that Stop ended the
+	// judging.
+	left, ends int64
+	work       uint
+	stopped    bool
 
 	// The hypothesis being tested: its beam candidates, the initial state being
 	// tried, and the objects of the slots.
@@ -60,8 +62,12 @@ type Worker struct {
 	fitters []*constraint.Fitter
 	fit     constraint.Result
 
-	// rank is the best rank of each hypothesis that accepts, NaN otherwise.
+	// rank is the best rank of each hypothesis that accepts, NaN otherwise; unfinished says
+	// that the work budget ended before all of a hypothesis was tried.
 	rank       []float64
+	unfinished []bool
+	// early are the entries of the vetoes of one event, which are judged first.
+	early      event.Entries
 	fours      [MaxProducts + 2]momentum.Four
 	values     []float64
 	spreads    []float64
@@ -100,6 +106,8 @@ func (p *Program) NewWorker(detail Detail) *Worker {
 		matching: make([]set, len(p.signatures)),
 		fitters:  make([]*constraint.Fitter, len(p.hypotheses)),
 		rank:     make([]float64, len(p.hypotheses)),
+
+		unfinished: make([]bool, len(p.hypotheses)),
 	}
 	for i := range p.hypotheses {
 		if f := p.hypotheses[i].fit; f != nil {
@@ -226,8 +234,8 @@ func (w *Worker) Append(out, part *event.VerdictBlock) {
 
 // event judges event i, whose numbers are good, and sets its bits.
 func (w *Worker) event(i int, out *event.VerdictBlock) event.Status {
-	p := w.program
-	w.index, w.left = i, p.budget
+	w.index = i
+	w.refill()
 	w.objects.load(w.block, i)
 	for k := range w.motions {
 		w.motions[k].ready = false
@@ -236,13 +244,7 @@ func (w *Worker) event(i int, out *event.VerdictBlock) event.Status {
 		w.tables[k].ready = false
 	}
 	w.match()
-	finished := true
-	for h := range p.hypotheses {
-		w.rank[h] = math.NaN()
-		if finished {
-			finished = w.test(h, out.Entries)
-		}
-	}
+	w.testAll(out.Entries)
 	if w.stopped {
 		if out.Entries != nil {
 			out.Entries.DropEvent()
@@ -250,28 +252,57 @@ func (w *Worker) event(i int, out *event.VerdictBlock) event.Status {
 		return event.Expired
 	}
 	w.decide(out)
-	if !finished {
+	if slices.Contains(w.unfinished, true) {
 		return event.BudgetUsed
 	}
 	return event.Good
 }
 
-// decide sets the bits of the event from the ranks of the hypotheses.
+// testAll tests the event against every hypothesis. Vetoes have the work budget before the
+// others: a veto that is not finished cannot close the gate. Entries stand in the order of
+// the hypotheses all the same, so those of vetoes wait for their place.
+func (w *Worker) testAll(entries *event.Entries) {
+	p := w.program
+	early := entries
+	if entries != nil && p.hypotheses[p.order[0]].role == Veto {
+		early = &w.early
+		early.Reset(p.fits, p.uncertain)
+	}
+	placed := 0
+	place := func(before int) {
+		for ; early != entries && placed < early.Len() && int(early.Hypothesis[placed]) < before; placed++ {
+			entries.Append(early.Row(placed))
+		}
+	}
+	for _, h := range p.order {
+		if p.hypotheses[h].role == Veto {
+			w.test(h, early)
+			continue
+		}
+		place(h)
+		w.test(h, entries)
+	}
+	place(len(p.hypotheses))
+}
+
+// decide sets the bits of the event from the ranks of the hypotheses. Where the work budget
+// ended nothing is lost: the gate opens for a hypothesis that was not finished as it does
+// for one that accepts, unless a veto accepts.
 func (w *Worker) decide(out *event.VerdictBlock) {
 	p := w.program
 	at := len(out.Status)
 	gate, veto := false, false
 	for h := range p.hypotheses {
-		if !w.accepted(h) {
-			continue
+		accepted := w.accepted(h)
+		if accepted {
+			out.Accepted[h].Set(at)
 		}
-		out.Accepted[h].Set(at)
 		hypothesis := &p.hypotheses[h]
 		switch hypothesis.role {
 		case Gate:
-			gate = gate || hypothesis.kept(w.block.EventIDs[w.index])
+			gate = gate || (accepted || w.unfinished[h]) && hypothesis.kept(w.block.EventIDs[w.index])
 		case Veto:
-			veto = true
+			veto = veto || accepted
 		case Shadow:
 		}
 	}

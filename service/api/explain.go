@@ -79,7 +79,7 @@ func explanationMessage(e *selection.Explanation, c *compiledSelection) *kinegat
 		x := &kinegatev1.HypothesisExplanation{
 			Name: outline.GetName(), Reaction: outline.GetReaction(), Products: outline.GetProducts(),
 			Accepted: h.Accepted, Kept: h.Kept, Obstacle: h.Obstacle, AssignmentCount: h.Tried,
-			DegreesOfFreedom: outline.DegreesOfFreedom,
+			DegreesOfFreedom: outline.DegreesOfFreedom, BudgetUsed: h.Unfinished,
 		}
 		for k := range h.Assignments {
 			x.Assignments = append(x.Assignments, assignmentMessage(&h.Assignments[k]))

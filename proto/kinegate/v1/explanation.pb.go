@@ -132,8 +132,12 @@ type HypothesisExplanation struct {
 	Assignments []*AssignmentExplanation `protobuf:"bytes,8,rep,name=assignments,proto3" json:"assignments,omitempty"`
 	// Degrees of freedom of the fit; absent without a fit.
 	DegreesOfFreedom *int32 `protobuf:"varint,9,opt,name=degrees_of_freedom,json=degreesOfFreedom,proto3,oneof" json:"degrees_of_freedom,omitempty"`
-	unknownFields    protoimpl.UnknownFields
-	sizeCache        protoimpl.SizeCache
+	// The work budget was used up before every assignment of the hypothesis had
+	// been tried. The gate then opens for it as if it had accepted, if its role is
+	// ROLE_GATE, its prescale keeps the event and no veto accepts.
+	BudgetUsed    bool `protobuf:"varint,10,opt,name=budget_used,json=budgetUsed,proto3" json:"budget_used,omitempty"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
 }
 
 func (x *HypothesisExplanation) Reset() {
@@ -227,6 +231,13 @@ func (x *HypothesisExplanation) GetDegreesOfFreedom() int32 {
 		return *x.DegreesOfFreedom
 	}
 	return 0
+}
+
+func (x *HypothesisExplanation) GetBudgetUsed() bool {
+	if x != nil {
+		return x.BudgetUsed
+	}
+	return false
 }
 
 // AssignmentExplanation is one assignment with one beam candidate.
@@ -839,7 +850,7 @@ const file_kinegate_v1_explanation_proto_rawDesc = "" +
 	"\x04gate\x18\x04 \x01(\bR\x04gate\x12B\n" +
 	"\n" +
 	"hypotheses\x18\x05 \x03(\v2\".kinegate.v1.HypothesisExplanationR\n" +
-	"hypotheses\"\xea\x02\n" +
+	"hypotheses\"\x8b\x03\n" +
 	"\x15HypothesisExplanation\x12\x12\n" +
 	"\x04name\x18\x01 \x01(\tR\x04name\x12\x1a\n" +
 	"\breaction\x18\x02 \x01(\tR\breaction\x12\x1a\n" +
@@ -849,7 +860,10 @@ const file_kinegate_v1_explanation_proto_rawDesc = "" +
 	"\bobstacle\x18\x06 \x01(\tR\bobstacle\x12)\n" +
 	"\x10assignment_count\x18\a \x01(\x03R\x0fassignmentCount\x12D\n" +
 	"\vassignments\x18\b \x03(\v2\".kinegate.v1.AssignmentExplanationR\vassignments\x121\n" +
-	"\x12degrees_of_freedom\x18\t \x01(\x05H\x00R\x10degreesOfFreedom\x88\x01\x01B\x15\n" +
+	"\x12degrees_of_freedom\x18\t \x01(\x05H\x00R\x10degreesOfFreedom\x88\x01\x01\x12\x1f\n" +
+	"\vbudget_used\x18\n" +
+	" \x01(\bR\n" +
+	"budgetUsedB\x15\n" +
 	"\x13_degrees_of_freedom\"\xd1\x02\n" +
 	"\x15AssignmentExplanation\x12\x19\n" +
 	"\bbeam_row\x18\x01 \x01(\x05R\abeamRow\x12\x16\n" +

@@ -31,11 +31,14 @@ type Role int32
 const (
 	// Read as ROLE_GATE.
 	Role_ROLE_UNSPECIFIED Role = 0
-	// Acceptance opens the gate.
+	// Acceptance opens the gate. So does a work budget that was used up before the
+	// hypothesis was finished: nothing is lost.
 	Role_ROLE_GATE Role = 1
 	// Acceptance is reported and never opens the gate.
 	Role_ROLE_SHADOW Role = 2
-	// Acceptance closes the gate, whatever the others say.
+	// Acceptance closes the gate, whatever the others say. Vetoes have the work
+	// budget before the others; one that is not finished within it leaves the gate
+	// as it is.
 	Role_ROLE_VETO Role = 3
 )
 
@@ -203,7 +206,8 @@ const (
 	EntryDetail_ENTRY_DETAIL_NONE EntryDetail = 1
 	// Those of hypotheses that accept.
 	EntryDetail_ENTRY_DETAIL_ACCEPTED EntryDetail = 2
-	// Those of every hypothesis with a possible assignment.
+	// Those of every hypothesis with a possible assignment, or with one that the
+	// work budget left untried.
 	EntryDetail_ENTRY_DETAIL_ALL EntryDetail = 3
 )
 
@@ -262,7 +266,11 @@ type Selection struct {
 	// Groups of comparable hypotheses; only within a group is one best.
 	Groups []*Group `protobuf:"bytes,4,rep,name=groups,proto3" json:"groups,omitempty"`
 	// Most assignments to try for one event over all hypotheses and beam
-	// candidates; 0 means 100,000.
+	// candidates; 0 means 100,000. A complete assignment counts once for each beam
+	// candidate, one that a window ends before it is complete counts once. Vetoes
+	// are tested first, then the other hypotheses in the order of the selection.
+	// A choice of objects that leaves a product without one is no assignment; 16
+	// of them for each assignment of the budget end the work too.
 	AssignmentBudgetCount int64 `protobuf:"varint,5,opt,name=assignment_budget_count,json=assignmentBudgetCount,proto3" json:"assignment_budget_count,omitempty"`
 	unknownFields         protoimpl.UnknownFields
 	sizeCache             protoimpl.SizeCache

@@ -23,7 +23,8 @@ const (
 	_ = protoimpl.EnforceVersion(protoimpl.MaxVersion - 20)
 )
 
-// EventStatus says whether an event could be judged.
+// EventStatus says whether an event could be judged. The gate bit and all others
+// are clear for an event that was not judged.
 type EventStatus int32
 
 const (
@@ -45,7 +46,9 @@ const (
 	// status that may differ when the same events are judged again.
 	EventStatus_EVENT_STATUS_EXPIRED EventStatus = 7
 	// Judged in part: the work budget was used up before every assignment had
-	// been tried. Hypotheses that accept do accept.
+	// been tried. Hypotheses that accept do accept. The gate is open for a
+	// hypothesis of ROLE_GATE that was not finished as for one that accepts, and
+	// closed where a veto accepts.
 	EventStatus_EVENT_STATUS_BUDGET_USED EventStatus = 8
 )
 
@@ -117,6 +120,11 @@ const (
 	// No assignment passes, and the fit of the one described, the best that was
 	// possible, did not converge: the status of the fit says how it ended.
 	EntryStatus_ENTRY_STATUS_FIT_FAILED EntryStatus = 3
+	// The work budget was used up before every assignment had been tried, and none
+	// that was tried passes. The entry describes the best of those that were fitted,
+	// or else none: then every element of its assignment is -1 and every observable
+	// NaN.
+	EntryStatus_ENTRY_STATUS_BUDGET_USED EntryStatus = 4
 )
 
 // Enum value maps for EntryStatus.
@@ -126,12 +134,14 @@ var (
 		1: "ENTRY_STATUS_ACCEPTED",
 		2: "ENTRY_STATUS_REJECTED",
 		3: "ENTRY_STATUS_FIT_FAILED",
+		4: "ENTRY_STATUS_BUDGET_USED",
 	}
 	EntryStatus_value = map[string]int32{
 		"ENTRY_STATUS_UNSPECIFIED": 0,
 		"ENTRY_STATUS_ACCEPTED":    1,
 		"ENTRY_STATUS_REJECTED":    2,
 		"ENTRY_STATUS_FIT_FAILED":  3,
+		"ENTRY_STATUS_BUDGET_USED": 4,
 	}
 )
 
@@ -178,7 +188,10 @@ type VerdictBlock struct {
 	// Status of each event, uint8, values of EventStatus.
 	Statuses []byte `protobuf:"bytes,5,opt,name=statuses,proto3" json:"statuses,omitempty"`
 	// The gate: one bit per event, least significant bit first, after prescale,
-	// veto and shadow.
+	// veto and shadow. Set where a hypothesis of ROLE_GATE accepts, or was not
+	// finished when the work budget was used up, and its prescale keeps the event,
+	// and no veto accepts. Clear for events that were not judged: their status says
+	// so, and the caller decides what becomes of them.
 	Gate []byte `protobuf:"bytes,6,opt,name=gate,proto3" json:"gate,omitempty"`
 	// One set of bits per hypothesis in the selection's order, before prescale,
 	// veto and shadow.
@@ -398,7 +411,8 @@ func (x *HypothesisBits) GetAccepted() []byte {
 type GroupBest struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
 	// Index of the hypothesis in the selection, int16, one per event; -1 where
-	// none of the group accepts.
+	// none of the group accepts. Of a hypothesis that was not finished when the
+	// work budget was used up counts what was tried.
 	Best          []byte `protobuf:"bytes,1,opt,name=best,proto3" json:"best,omitempty"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
@@ -441,8 +455,9 @@ func (x *GroupBest) GetBest() []byte {
 	return nil
 }
 
-// EntryColumns holds one entry for each accepted combination of event,
-// hypothesis and beam candidate: its best assignment.
+// EntryColumns holds one entry for each combination of event, hypothesis and beam
+// candidate that was asked for: its best assignment, of those that were tried where
+// the work budget was used up.
 type EntryColumns struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
 	// First entry of each event and the total at the end, int32.
@@ -456,7 +471,9 @@ type EntryColumns struct {
 	Weights []byte `protobuf:"bytes,4,opt,name=weights,proto3" json:"weights,omitempty"`
 	// Status of each entry, uint8, values of EntryStatus.
 	Statuses []byte `protobuf:"bytes,5,opt,name=statuses,proto3" json:"statuses,omitempty"`
-	// Number of assignments tried for the entry, int32.
+	// Number of assignments tried for the hypothesis of the entry, int32: complete
+	// ones once, however many beam candidates there are, and those that a window
+	// ended.
 	AssignmentsTried []byte `protobuf:"bytes,6,opt,name=assignments_tried,json=assignmentsTried,proto3" json:"assignments_tried,omitempty"`
 	// First assignment element of each entry and the total at the end, int32.
 	AssignmentOffsets []byte `protobuf:"bytes,7,opt,name=assignment_offsets,json=assignmentOffsets,proto3" json:"assignment_offsets,omitempty"`
@@ -737,12 +754,13 @@ const file_kinegate_v1_verdict_proto_rawDesc = "" +
 	"\x19EVENT_STATUS_OUT_OF_RANGE\x10\x05\x12\x1a\n" +
 	"\x16EVENT_STATUS_OVERSIZED\x10\x06\x12\x18\n" +
 	"\x14EVENT_STATUS_EXPIRED\x10\a\x12\x1c\n" +
-	"\x18EVENT_STATUS_BUDGET_USED\x10\b*~\n" +
+	"\x18EVENT_STATUS_BUDGET_USED\x10\b*\x9c\x01\n" +
 	"\vEntryStatus\x12\x1c\n" +
 	"\x18ENTRY_STATUS_UNSPECIFIED\x10\x00\x12\x19\n" +
 	"\x15ENTRY_STATUS_ACCEPTED\x10\x01\x12\x19\n" +
 	"\x15ENTRY_STATUS_REJECTED\x10\x02\x12\x1b\n" +
-	"\x17ENTRY_STATUS_FIT_FAILED\x10\x03B3Z1example.org/kinegate/proto/kinegate/v1;kinegatev1b\x06proto3"
+	"\x17ENTRY_STATUS_FIT_FAILED\x10\x03\x12\x1c\n" +
+	"\x18ENTRY_STATUS_BUDGET_USED\x10\x04B3Z1example.org/kinegate/proto/kinegate/v1;kinegatev1b\x06proto3"
 
 var (
 	file_kinegate_v1_verdict_proto_rawDescOnce sync.Once

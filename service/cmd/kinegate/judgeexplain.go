@@ -54,8 +54,7 @@ func (j *judgeRun) explainEvent(
 
 // printExplanation prints why an event was judged as it was.
 func (e *environment) printExplanation(r *kinegatev1.ExplainVerdictResponse, of *kinegatev1.Selection) error {
-	e.print("event %d: %s; the gate %s", r.GetEventId(), words(r.GetStatus().String(), "EVENT_STATUS_"),
-		map[bool]string{true: "accepts it", false: "does not accept it"}[r.GetGate()])
+	e.print("event %d: %s; the gate %s", r.GetEventId(), words(r.GetStatus().String(), "EVENT_STATUS_"), gateWords(r))
 	for k, h := range r.GetHypotheses() {
 		e.print("")
 		e.print("hypothesis %s: %s", h.GetName(), h.GetReaction())
@@ -67,6 +66,9 @@ func (e *environment) printExplanation(r *kinegatev1.ExplainVerdictResponse, of 
 			e.print("  %s: %s", verdict, h.GetObstacle())
 			continue
 		}
+		if h.GetBudgetUsed() {
+			verdict += "; the work budget was used up before all was tried"
+		}
 		e.print("  %s; %s tried, %d shown", verdict, plural(h.GetAssignmentCount(), "assignment"), len(h.GetAssignments()))
 		for i, a := range h.GetAssignments() {
 			if err := e.printAssignment(h, of.GetHypotheses()[k].GetCondition(), i, a); err != nil {
@@ -75,6 +77,17 @@ func (e *environment) printExplanation(r *kinegatev1.ExplainVerdictResponse, of 
 		}
 	}
 	return nil
+}
+
+// gateWords says what the gate does, and why where no hypothesis is the reason.
+func gateWords(r *kinegatev1.ExplainVerdictResponse) string {
+	switch {
+	case !r.GetGate():
+		return "does not accept it"
+	case r.GetStatus() == kinegatev1.EventStatus_EVENT_STATUS_BUDGET_USED:
+		return "accepts it: a hypothesis that opens it accepts or was not finished, and no veto accepts"
+	}
+	return "accepts it"
 }
 
 func plural(n int64, noun string) string {

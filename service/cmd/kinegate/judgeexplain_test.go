@@ -66,8 +66,21 @@ func TestJudgeWithoutBudget(t *testing.T) {
 	if err := os.WriteFile(name, []byte(short), 0o600); err != nil {
 		t.Fatal(err)
 	}
-	wantCommand(t, "judge --selection "+name+" "+pionsEvents, exitWell, "events ended when the work budget was used up")
+	wantCommand(t, "judge --selection "+name+" "+pionsEvents, exitWell, "events judged in part: the work budget was used up before all was tried")
 	wantCommand(t, "judge --selection "+name+" "+pionsEvents+" --explain 4", exitWell, ": fails; the best that was possible")
+	const veto = `
+  - {name: cosmic, reaction: "-> gamma", role: ROLE_VETO, extra_objects: {any: {}}}
+  - {name: late, reaction: "-> gamma gamma", extra_objects: {any: {}}}
+`
+	for _, c := range []struct{ more, budget, says string }{
+		{"", "2", "event 4: budget used; the gate accepts it: a hypothesis that opens it accepts or was not finished"},
+		{"", "2", "does not accept the event; the work budget was used up before all was tried; 2 assignments tried"},
+		{veto, "3", "event 4: budget used; the gate does not accept it"},
+		{veto, "3", "does not accept the event: the work budget was used up before this hypothesis"},
+	} {
+		text := strings.Replace(strings.TrimRight(short, "\n")+c.more, "count: 2", "count: "+c.budget, 1)
+		wantCommand(t, "judge --selection "+write(t, "short.yaml", text)+" "+pionsEvents+" --explain 4", exitWell, c.says)
+	}
 }
 
 // TestJudgeOfNoText gives a file that is no text another ending than its own.

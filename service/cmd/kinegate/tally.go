@@ -97,7 +97,7 @@ var endings = []struct { //nolint:gochecknoglobals // a list that nothing writes
 	{kinegatev1.EventStatus_EVENT_STATUS_OUT_OF_RANGE, "not judged: an angle, mass or degree of polarisation is out of range"},
 	{kinegatev1.EventStatus_EVENT_STATUS_OVERSIZED, "not judged: more objects or beam candidates than an event may have"},
 	{kinegatev1.EventStatus_EVENT_STATUS_EXPIRED, "not judged: the latency budget was used up before"},
-	{kinegatev1.EventStatus_EVENT_STATUS_BUDGET_USED, "ended when the work budget was used up"},
+	{kinegatev1.EventStatus_EVENT_STATUS_BUDGET_USED, "judged in part: the work budget was used up before all was tried"},
 }
 
 // write prints the summary.

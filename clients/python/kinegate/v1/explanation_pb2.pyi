@@ -24,7 +24,7 @@ class ExplainVerdictResponse(_message.Message):
     def __init__(self, selection_digest: _Optional[str] = ..., event_id: _Optional[int] = ..., status: _Optional[_Union[_verdict_pb2.EventStatus, str]] = ..., gate: bool = ..., hypotheses: _Optional[_Iterable[_Union[HypothesisExplanation, _Mapping]]] = ...) -> None: ...
 
 class HypothesisExplanation(_message.Message):
-    __slots__ = ("name", "reaction", "products", "accepted", "kept", "obstacle", "assignment_count", "assignments", "degrees_of_freedom")
+    __slots__ = ("name", "reaction", "products", "accepted", "kept", "obstacle", "assignment_count", "assignments", "degrees_of_freedom", "budget_used")
     NAME_FIELD_NUMBER: _ClassVar[int]
     REACTION_FIELD_NUMBER: _ClassVar[int]
     PRODUCTS_FIELD_NUMBER: _ClassVar[int]
@@ -34,6 +34,7 @@ class HypothesisExplanation(_message.Message):
     ASSIGNMENT_COUNT_FIELD_NUMBER: _ClassVar[int]
     ASSIGNMENTS_FIELD_NUMBER: _ClassVar[int]
     DEGREES_OF_FREEDOM_FIELD_NUMBER: _ClassVar[int]
+    BUDGET_USED_FIELD_NUMBER: _ClassVar[int]
     name: str
     reaction: str
     products: _containers.RepeatedScalarFieldContainer[str]
@@ -43,7 +44,8 @@ class HypothesisExplanation(_message.Message):
     assignment_count: int
     assignments: _containers.RepeatedCompositeFieldContainer[AssignmentExplanation]
     degrees_of_freedom: int
-    def __init__(self, name: _Optional[str] = ..., reaction: _Optional[str] = ..., products: _Optional[_Iterable[str]] = ..., accepted: bool = ..., kept: bool = ..., obstacle: _Optional[str] = ..., assignment_count: _Optional[int] = ..., assignments: _Optional[_Iterable[_Union[AssignmentExplanation, _Mapping]]] = ..., degrees_of_freedom: _Optional[int] = ...) -> None: ...
+    budget_used: bool
+    def __init__(self, name: _Optional[str] = ..., reaction: _Optional[str] = ..., products: _Optional[_Iterable[str]] = ..., accepted: bool = ..., kept: bool = ..., obstacle: _Optional[str] = ..., assignment_count: _Optional[int] = ..., assignments: _Optional[_Iterable[_Union[AssignmentExplanation, _Mapping]]] = ..., degrees_of_freedom: _Optional[int] = ..., budget_used: bool = ...) -> None: ...
 
 class AssignmentExplanation(_message.Message):
     __slots__ = ("beam_row", "weight", "objects", "complete", "passed", "best", "rank_distance", "windows", "fit")

@@ -25,6 +25,7 @@ class EntryStatus(int, metaclass=_enum_type_wrapper.EnumTypeWrapper):
     ENTRY_STATUS_ACCEPTED: _ClassVar[EntryStatus]
     ENTRY_STATUS_REJECTED: _ClassVar[EntryStatus]
     ENTRY_STATUS_FIT_FAILED: _ClassVar[EntryStatus]
+    ENTRY_STATUS_BUDGET_USED: _ClassVar[EntryStatus]
 EVENT_STATUS_UNSPECIFIED: EventStatus
 EVENT_STATUS_JUDGED: EventStatus
 EVENT_STATUS_NON_FINITE: EventStatus
@@ -38,6 +39,7 @@ ENTRY_STATUS_UNSPECIFIED: EntryStatus
 ENTRY_STATUS_ACCEPTED: EntryStatus
 ENTRY_STATUS_REJECTED: EntryStatus
 ENTRY_STATUS_FIT_FAILED: EntryStatus
+ENTRY_STATUS_BUDGET_USED: EntryStatus
 
 class VerdictBlock(_message.Message):
     __slots__ = ("sequence", "rejected", "selection_digest", "event_count", "statuses", "gate", "hypotheses", "groups", "entries")
