@@ -99,7 +99,7 @@ initial_state: {two_beams: {beam1: {even: {min_gev: 0.5, max_gev: 1.5}}, beam2: 
 			var probabilities []float64
 			for _, b := range out.blocks() {
 				reply, err := s.bulk.JudgeBlock(t.Context(), &kinegatev1.JudgeBlockRequest{
-					Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Inline{Inline: selection.GetSelection()}},
+					Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Given{Given: selection.GetSelection()}},
 					Entries:   kinegatev1.EntryDetail_ENTRY_DETAIL_ALL, Block: b.GetEvents(),
 				})
 				if err != nil {
