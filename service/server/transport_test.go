@@ -185,6 +185,48 @@ func rawFrames(t *testing.T, conn net.Conn, path string, data []byte, last bool)
 	}
 }
 
+// TestWindowsOfListeners: each listener gives callers the windows of flow control that
+// are configured for it, which bound what an unread stream may fill.
+func TestWindowsOfListeners(t *testing.T) {
+	r := start(t)
+	for _, c := range []struct {
+		address            string
+		stream, connection Bytes
+	}{
+		{r.options.GateAddress, r.options.GateStreamWindow, r.options.GateConnectionWindow},
+		{r.options.GeneralAddress, r.options.GeneralStreamWindow, r.options.GeneralConnectionWindow},
+	} {
+		conn, err := r.network.dial(t.Context(), c.address)
+		if err != nil {
+			t.Fatal(err)
+		}
+		defer func() { _ = conn.Close() }()
+		_ = conn.SetDeadline(time.Now().Add(5 * time.Second))
+		if _, err := conn.Write([]byte(http2.ClientPreface)); err != nil {
+			t.Fatal(err)
+		}
+		framer := http2.NewFramer(conn, conn)
+		_ = framer.WriteSettings()
+		const initial = 65535 // RFC 9113, section 6.9.2
+		var stream, connection uint32
+		for stream == 0 || connection == 0 {
+			frame, err := framer.ReadFrame()
+			if err != nil {
+				t.Fatalf("%s: %v", c.address, err)
+			}
+			switch f := frame.(type) {
+			case *http2.SettingsFrame:
+				stream, _ = f.Value(http2.SettingInitialWindowSize)
+			case *http2.WindowUpdateFrame:
+				connection = initial + f.Increment
+			}
+		}
+		if Bytes(stream) != c.stream || Bytes(connection) != c.connection {
+			t.Errorf("%s: windows of %d and %d, want %d and %d", c.address, stream, connection, c.stream, c.connection)
+		}
+	}
+}
+
 // TestDrainUnderLoad ends a server while clients call, watch and stall, over sockets.
 // No call that was under way is lost, and the server is gone in time.
 func TestDrainUnderLoad(t *testing.T) {
