@@ -94,7 +94,7 @@ func TestStalledReaderLosesItsConnection(t *testing.T) {
 	case <-time.After(10 * time.Second):
 		t.Fatal("the connection stays")
 	}
-	if took := time.Since(begun); took < 4500*time.Millisecond || took > 6500*time.Millisecond {
+	if took := time.Since(begun); took < 4500*time.Millisecond || took > 6*time.Second {
 		t.Errorf("cut off after %v", took)
 	}
 	eventually(t, "counted", func() bool {
@@ -145,7 +145,7 @@ func TestWriterWithoutReader(t *testing.T) {
 			open.Entries = entries
 			send(t, stream, &kinegatev1.JudgeRequest{Frame: &kinegatev1.JudgeRequest_Open{Open: open}})
 			bytes, longest := writeAll(t, stream, 64<<20, perBlock, c)
-			if longest > 1500*time.Millisecond*slowdown {
+			if longest > time.Second*slowdown {
 				t.Errorf("one send took %v", longest)
 			}
 			t.Logf("FIGURE S1 %s: %d bytes written, the longest send took %v", name, bytes, longest)
