@@ -19,9 +19,9 @@ type Verdicts struct {
 	entryOffsets, assignmentOffsets, observableOffsets []int32
 	hypotheses, beamRows, assignments                  []int16
 	weights, observables, uncertainties                []float64
-	tried                                              []int32
+	assignmentCounts                                   []int32
 	chiSquares, probabilities                          []float64
-	degreesOfFreedom, iterations                       []int16
+	degreesOfFreedom, iterationCounts                  []int16
 }
 
 // Entry is one entry of a verdict block.
@@ -34,8 +34,8 @@ type Entry struct {
 	Weight float64
 	// Status says how the entry came about.
 	Status kinegatev1.EntryStatus
-	// Tried is the number of assignments tried.
-	Tried int
+	// AssignmentCount is the number of assignments tried.
+	AssignmentCount int
 	// Assignment is the object of each product, -1 for none.
 	Assignment []int16
 	// Observables are the recorded values; NaN is not computed.
@@ -58,8 +58,8 @@ type Fit struct {
 	// Probability is that of a larger chi-square; NaN unless the fit converged with a
 	// degree of freedom.
 	Probability float64
-	// Iterations is the number of steps.
-	Iterations int
+	// IterationCount is the number of steps.
+	IterationCount int
 }
 
 // ReadVerdicts reads the columns of a verdict block that was not rejected.
@@ -80,7 +80,7 @@ func ReadVerdicts(block *kinegatev1.VerdictBlock) (*Verdicts, error) {
 		v.hypotheses = read(&r, column.Int16s, e.GetHypothesisIndices())
 		v.beamRows = read(&r, column.Int16s, e.GetBeamRows())
 		v.weights = read(&r, column.Float64s, e.GetWeights())
-		v.tried = read(&r, column.Int32s, e.GetAssignmentsTried())
+		v.assignmentCounts = read(&r, column.Int32s, e.GetAssignmentCounts())
 		v.assignmentOffsets = read(&r, column.Int32s, e.GetAssignmentOffsets())
 		v.assignments = read(&r, column.Int16s, e.GetAssignments())
 		v.observableOffsets = read(&r, column.Int32s, e.GetObservableOffsets())
@@ -90,7 +90,7 @@ func ReadVerdicts(block *kinegatev1.VerdictBlock) (*Verdicts, error) {
 			v.chiSquares = read(&r, column.Float64s, f.GetChiSquares())
 			v.degreesOfFreedom = read(&r, column.Int16s, f.GetDegreesOfFreedom())
 			v.probabilities = read(&r, column.Float64s, f.GetProbabilities())
-			v.iterations = read(&r, column.Int16s, f.GetIterations())
+			v.iterationCounts = read(&r, column.Int16s, f.GetIterationCounts())
 		}
 	}
 	if r.err != nil {
@@ -129,13 +129,13 @@ func (v *Verdicts) Entries(i int) []Entry {
 	for k := v.entryOffsets[i]; k < v.entryOffsets[i+1]; k++ {
 		from, to := v.observableOffsets[k], v.observableOffsets[k+1]
 		entry := Entry{
-			Hypothesis:  int(v.hypotheses[k]),
-			BeamRow:     int(v.beamRows[k]),
-			Weight:      v.weights[k],
-			Status:      kinegatev1.EntryStatus(statuses[k]),
-			Tried:       int(v.tried[k]),
-			Assignment:  v.assignments[v.assignmentOffsets[k]:v.assignmentOffsets[k+1]],
-			Observables: v.observables[from:to],
+			Hypothesis:      int(v.hypotheses[k]),
+			BeamRow:         int(v.beamRows[k]),
+			Weight:          v.weights[k],
+			Status:          kinegatev1.EntryStatus(statuses[k]),
+			AssignmentCount: int(v.assignmentCounts[k]),
+			Assignment:      v.assignments[v.assignmentOffsets[k]:v.assignmentOffsets[k+1]],
+			Observables:     v.observables[from:to],
 		}
 		if all.ObservableUncertainties != nil {
 			entry.Uncertainties = v.uncertainties[from:to]
@@ -144,7 +144,7 @@ func (v *Verdicts) Entries(i int) []Entry {
 			entry.Fit = &Fit{
 				Status: kinegatev1.FitStatus(fits[k]), ChiSquare: v.chiSquares[k],
 				DegreesOfFreedom: int(v.degreesOfFreedom[k]), Probability: v.probabilities[k],
-				Iterations: int(v.iterations[k]),
+				IterationCount: int(v.iterationCounts[k]),
 			}
 		}
 		entries = append(entries, entry)

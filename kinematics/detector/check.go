@@ -20,13 +20,13 @@ func (c *Config) Validate() error {
 	}
 	if d := c.Recoil; d != nil {
 		l.polar("recoil.theta", d.Theta)
-		l.size("recoil.momentum_min_gev", d.MomentumMinGeV)
+		l.size("recoil.min_momentum_gev", d.MinMomentumGeV)
 		l.spread("recoil.angle_sigma_rad", d.AngleSigmaRad)
 		l.probability("recoil.efficiency", d.Efficiency)
 	}
 	if d := c.Neutrals; d != nil {
 		l.polar("neutrals.theta", d.Theta)
-		l.size("neutrals.momentum_min_gev", d.MomentumMinGeV)
+		l.size("neutrals.min_momentum_gev", d.MinMomentumGeV)
 		l.spread("neutrals.angle_sigma_rad", d.AngleSigmaRad)
 		l.probability("neutrals.efficiency", d.Efficiency)
 	}
@@ -85,7 +85,7 @@ func (d *Calorimeter) check(l *checker) {
 
 func (d *Tracker) check(l *checker) {
 	l.polar("tracker.theta", d.Theta)
-	l.size("tracker.momentum_min_gev", d.MomentumMinGeV)
+	l.size("tracker.min_momentum_gev", d.MinMomentumGeV)
 	l.size("tracker.constant", d.Constant)
 	l.size("tracker.per_gev", d.PerGeV)
 	if d.Constant == 0 && d.PerGeV == 0 {

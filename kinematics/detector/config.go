@@ -93,8 +93,8 @@ type Noise struct {
 type Tracker struct {
 	// Theta is the acceptance, of true directions.
 	Theta Polar
-	// MomentumMinGeV is the lowest true momentum of a track.
-	MomentumMinGeV float64
+	// MinMomentumGeV is the lowest true momentum of a track.
+	MinMomentumGeV float64
 	// Constant and PerGeV are a and b of the momentum resolution
 	// (sigma_p/p)^2 = a^2 + (b p)^2, with b in 1/GeV.
 	Constant, PerGeV float64
@@ -119,8 +119,8 @@ type Confusion struct {
 // no other charged particle.
 type Recoil struct {
 	Theta Polar
-	// MomentumMinGeV is the lowest true momentum.
-	MomentumMinGeV float64
+	// MinMomentumGeV is the lowest true momentum.
+	MinMomentumGeV float64
 	AngleSigmaRad  float64
 	Efficiency     float64
 }
@@ -128,7 +128,7 @@ type Recoil struct {
 // Neutrals finds the direction of neutrons and K_L.
 type Neutrals struct {
 	Theta          Polar
-	MomentumMinGeV float64
+	MinMomentumGeV float64
 	AngleSigmaRad  float64
 	Efficiency     float64
 }
@@ -154,8 +154,8 @@ type Vertex struct {
 // tracks come from. The tracks then carry its vertex group; all other objects
 // belong to the event's vertex.
 type Displaced struct {
-	// DistanceMinM is the lowest true distance from the interaction point.
-	DistanceMinM float64
+	// MinDistanceM is the lowest true distance from the interaction point.
+	MinDistanceM float64
 	// SigmaXM, SigmaYM and SigmaZM are the resolutions.
 	SigmaXM, SigmaYM, SigmaZM float64
 	// Efficiency of finding such a point.

@@ -33,7 +33,7 @@ func hall() detector.Config {
 			Noise:    &detector.Noise{Probability: 0.01, MeanGeV: 0.05},
 		},
 		Tracker: &detector.Tracker{
-			Theta: detector.Polar{MinRad: 10 * degree, MaxRad: 140 * degree}, MomentumMinGeV: 0.15,
+			Theta: detector.Polar{MinRad: 10 * degree, MaxRad: 140 * degree}, MinMomentumGeV: 0.15,
 			Constant: 0.015, PerGeV: 0.01, AngleSigmaRad: 0.003, Efficiency: 0.92, Identify: true,
 			Confusions: []detector.Confusion{
 				{Species: event.SpeciesProton, TakenFor: event.SpeciesPion, Probability: 0.05},
@@ -41,7 +41,7 @@ func hall() detector.Config {
 			},
 		},
 		Recoil: &detector.Recoil{
-			Theta: detector.Polar{MinRad: 10 * degree, MaxRad: 140 * degree}, MomentumMinGeV: 0.15, AngleSigmaRad: 0.008, Efficiency: 0.8,
+			Theta: detector.Polar{MinRad: 10 * degree, MaxRad: 140 * degree}, MinMomentumGeV: 0.15, AngleSigmaRad: 0.008, Efficiency: 0.8,
 		},
 		Tagger: &detector.Tagger{EdgesGeV: edges, TimeSigmaNS: 1.5},
 	}
@@ -404,7 +404,7 @@ func TestValidateListsEveryFault(t *testing.T) {
 	c.Recoil.Theta.MinRad = -1
 	c.Tagger.EdgesGeV[7] = 0
 	c.Vertex = &detector.Vertex{SigmaZM: math.Inf(1)}
-	c.Displaced = &detector.Displaced{DistanceMinM: -1, SigmaXM: 1, SigmaYM: 1, Efficiency: 2}
+	c.Displaced = &detector.Displaced{MinDistanceM: -1, SigmaXM: 1, SigmaYM: 1, Efficiency: 2}
 	_, err := detector.New(c)
 	var list fault.List
 	if !errors.As(err, &list) {
@@ -418,7 +418,7 @@ func TestValidateListsEveryFault(t *testing.T) {
 		"calorimeter.theta.max_rad", "calorimeter.threshold_gev", "calorimeter.efficiency", "calorimeter.split_off.max_share",
 		"tracker.angle_sigma_rad", "tracker.confusions[0].species", "tracker.confusions[2].probability",
 		"recoil.theta.min_rad", "tagger.edges_gev[7]", "vertex.sigma_z_m",
-		"displaced.distance_min_m", "displaced.sigma_z_m", "displaced.efficiency",
+		"displaced.min_distance_m", "displaced.sigma_z_m", "displaced.efficiency",
 	}
 	if !slices.Equal(got, want) {
 		t.Errorf("faults\n%v, want\n%v", got, want)

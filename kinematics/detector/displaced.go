@@ -27,7 +27,7 @@ func (w *worker) displaced(truth *event.Truth, i int, g *event.Groups) {
 		}
 		origin := pointOf(&truth.Origin, particles+int(w.objects[k].label))
 		distance := origin.Sub(interaction).Norm()
-		if !(distance > 0 && distance >= d.DistanceMinM) {
+		if !(distance > 0 && distance >= d.MinDistanceM) {
 			continue
 		}
 		tracks := 0
@@ -68,8 +68,8 @@ func pointOf(p *event.Positions, row int) momentum.Three {
 }
 
 func (d *Displaced) check(l *checker) {
-	if !(d.DistanceMinM >= 0 && d.DistanceMinM <= math.MaxFloat64) {
-		l.number("displaced.distance_min_m", d.DistanceMinM, ">= 0 and finite")
+	if !(d.MinDistanceM >= 0 && d.MinDistanceM <= math.MaxFloat64) {
+		l.number("displaced.min_distance_m", d.MinDistanceM, ">= 0 and finite")
 	}
 	for _, s := range []struct {
 		field string

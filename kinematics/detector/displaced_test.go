@@ -37,7 +37,7 @@ func lambdas(n int) *event.Truth {
 func displacedHall() detector.Config {
 	c := hall()
 	c.Vertex = &detector.Vertex{SigmaXM: 1e-4, SigmaYM: 1e-4, SigmaZM: 1e-4}
-	c.Displaced = &detector.Displaced{DistanceMinM: 0.005, SigmaXM: 5e-4, SigmaYM: 6e-4, SigmaZM: 2e-3, Efficiency: 0.9}
+	c.Displaced = &detector.Displaced{MinDistanceM: 0.005, SigmaXM: 5e-4, SigmaYM: 6e-4, SigmaZM: 2e-3, Efficiency: 0.9}
 	return c
 }
 

@@ -67,7 +67,7 @@ func (d *Tracker) variance(p float64) float64 {
 func (w *worker) track(p momentum.Three, class event.Class, species uint8, label int16) {
 	d := w.config.Tracker
 	size, theta := p.Norm(), p.Theta()
-	if !d.Theta.holds(theta) || !(size >= d.MomentumMinGeV) || !w.stream.Chance(d.Efficiency) {
+	if !d.Theta.holds(theta) || !(size >= d.MinMomentumGeV) || !w.stream.Chance(d.Efficiency) {
 		return
 	}
 	measured := size + float64(math.Sqrt(d.variance(size))*w.stream.Normal())
@@ -103,7 +103,7 @@ func (w *worker) confuse(species uint8) uint8 {
 // direct measures the direction of a particle and nothing else.
 func (w *worker) direct(p momentum.Three, d *Neutrals, o object) {
 	theta := p.Theta()
-	if !d.Theta.holds(theta) || !(p.Norm() >= d.MomentumMinGeV) || !w.stream.Chance(d.Efficiency) {
+	if !d.Theta.holds(theta) || !(p.Norm() >= d.MinMomentumGeV) || !w.stream.Chance(d.Efficiency) {
 		return
 	}
 	o.mask = event.DirectionMeasured

@@ -284,7 +284,7 @@ func TestValidateListsEveryFault(t *testing.T) {
 		got = append(got, f.Field)
 	}
 	want := []string{
-		"initial.beam.spectrum.high_gev", "initial.beam.mass_gev", "initial.target_mass_gev", "weighted",
+		"initial.beam.spectrum.max_gev", "initial.beam.mass_gev", "initial.target_mass_gev", "weighted",
 		"channels[0].products", "channels[1].bound", "channels[2].products[1].shape.l", "channels[2].products[1].decay.branching",
 		"channels[3].angle.product", "channels[3].angle.slope_per_gev2", "channels[4].energy.curve",
 		"target.length_m", "accidentals.rate_hz",

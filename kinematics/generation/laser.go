@@ -50,7 +50,7 @@ func (l LaserBackscatter) faults(field string) fault.List {
 	}
 	low, high := l.Range()
 	if !(low >= b.Lowest() && high <= b.Highest() && low < high) {
-		return fault.List{fault.New(fault.Outside, field+".low_gev", fault.Text(low)+" to "+fault.Text(high),
+		return fault.List{fault.New(fault.Outside, field+".min_gev", fault.Text(low)+" to "+fault.Text(high),
 			"a range inside "+fault.Text(b.Lowest())+" to "+fault.Text(b.Highest()))}
 	}
 	return nil

@@ -79,7 +79,7 @@ func (p *Product) faults(list fault.List, field string, depth int) fault.List {
 		value float64
 	}{
 		{"mass_gev", p.MassGeV}, {"width_gev", p.WidthGeV}, {"mean_life_s", p.MeanLifeS},
-		{"shape.low_gev", p.Shape.LowGeV}, {"shape.high_gev", p.Shape.HighGeV}, {"shape.radius_per_gev", p.Shape.RadiusPerGeV},
+		{"shape.min_gev", p.Shape.LowGeV}, {"shape.max_gev", p.Shape.HighGeV}, {"shape.radius_per_gev", p.Shape.RadiusPerGeV},
 	} {
 		if !(v.value >= 0 && v.value <= math.MaxFloat64) {
 			list = append(list, fault.Number(field+"."+v.name, v.value, ">= 0 and finite"))
@@ -126,7 +126,7 @@ func (p *Product) massFaults(list fault.List, field string) fault.List {
 	}
 	r := newResonance(p.Shape, p.MassGeV, p.WidthGeV, sum, nil)
 	if !(r.high > r.low) {
-		list = append(list, fault.New(fault.Infeasible, field+".shape.high_gev", fault.Text(r.high), "> "+fault.Text(r.low)+", the lowest mass"))
+		list = append(list, fault.New(fault.Infeasible, field+".shape.max_gev", fault.Text(r.high), "> "+fault.Text(r.low)+", the lowest mass"))
 	}
 	return list
 }

@@ -74,7 +74,7 @@ func (b Bremsstrahlung) Range() (low, high float64) { return b.LowGeV, b.HighGeV
 func (b Bremsstrahlung) faults(field string) fault.List {
 	list := interval(nil, field, b.LowGeV, b.HighGeV)
 	if !(b.ElectronGeV >= b.HighGeV && b.ElectronGeV <= math.MaxFloat64) {
-		list = append(list, fault.Number(field+".electron_gev", b.ElectronGeV, ">= high_gev and finite"))
+		list = append(list, fault.Number(field+".electron_gev", b.ElectronGeV, ">= max_gev and finite"))
 	}
 	return list
 }
@@ -222,9 +222,9 @@ func positive(list fault.List, field string, v float64) fault.List {
 
 // interval appends faults unless 0 < low < high, both finite.
 func interval(list fault.List, field string, low, high float64) fault.List {
-	list = positive(list, field+".low_gev", low)
+	list = positive(list, field+".min_gev", low)
 	if !(high > low && high <= math.MaxFloat64) {
-		list = append(list, fault.Number(field+".high_gev", high, "> low_gev and finite"))
+		list = append(list, fault.Number(field+".max_gev", high, "> min_gev and finite"))
 	}
 	return list
 }

@@ -390,7 +390,7 @@ func (d *drafter) extraObjects() {
 	case NoExtraObjects, AnyExtraObjects:
 	case SoftPhotons:
 		if x.MaxCount < 1 {
-			d.fault(at+".soft_photons.max_count", strconv.Itoa(int(x.MaxCount)), ">= 1")
+			d.fault(at+".soft_photons.max_count", strconv.FormatInt(x.MaxCount, 10), ">= 1")
 		}
 		if !(x.MaxEnergyGeV > 0) || !finite(x.MaxEnergyGeV) {
 			d.fault(at+".soft_photons.max_energy_gev", fault.Text(x.MaxEnergyGeV), "> 0")

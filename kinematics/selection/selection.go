@@ -169,7 +169,7 @@ type TimeWindow struct {
 type ExtraObjects struct {
 	Rule ExtraRule
 	// MaxCount is the most photons that SoftPhotons allows, at least 1.
-	MaxCount int32
+	MaxCount int64
 	// MaxEnergyGeV is the energy that each of them must be below, above 0.
 	MaxEnergyGeV float64
 }

@@ -87,11 +87,11 @@ func topologies(t testing.TB) []topology {
 // withTracks adds to a detector what measures charged particles, as finely, and their vertices.
 func withTracks(c detector.Config) detector.Config {
 	c.Tracker = &detector.Tracker{
-		Theta: c.Calorimeter.Theta, MomentumMinGeV: 0.05, Constant: 0.001, PerGeV: 0.0005, AngleSigmaRad: 0.0005, Efficiency: 1,
+		Theta: c.Calorimeter.Theta, MinMomentumGeV: 0.05, Constant: 0.001, PerGeV: 0.0005, AngleSigmaRad: 0.0005, Efficiency: 1,
 	}
 	const sigma = 0.0005
 	c.Vertex = &detector.Vertex{SigmaXM: sigma, SigmaYM: sigma, SigmaZM: sigma}
-	c.Displaced = &detector.Displaced{DistanceMinM: 10 * sigma, SigmaXM: sigma, SigmaYM: sigma, SigmaZM: sigma, Efficiency: 1}
+	c.Displaced = &detector.Displaced{MinDistanceM: 10 * sigma, SigmaXM: sigma, SigmaYM: sigma, SigmaZM: sigma, Efficiency: 1}
 	return c
 }
 

@@ -54,7 +54,7 @@ func (s *reactionService) ListOpenChannels(
 	}
 	initial := channels.Collision()
 	m := &kinegatev1.ListOpenChannelsResponse{
-		ChannelCount: int64(channels.Len()), CompleteBodyCount: int32Of(channels.Bodies), Complete: channels.Complete,
+		ChannelCount: int64(channels.Len()), CompleteBodyCount: int64(channels.Bodies), Complete: channels.Complete,
 		CentreOfMass: collisionMessage(&initial), Frame: form.state.Frame(), TableVersion: s.table.Version(),
 	}
 	for _, p := range channels.Particles() {
@@ -123,7 +123,7 @@ func (s *reactionService) search(request *kinegatev1.ListOpenChannelsRequest) (r
 }
 
 // bodies reads a number of bodies; 0 stands for 2.
-func (f *former) bodies(field string, n int32) int {
+func (f *former) bodies(field string, n int64) int {
 	const standard = 2
 	switch {
 	case n == 0:

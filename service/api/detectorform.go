@@ -19,13 +19,13 @@ func (f *former) detectorForm(path string, m *kinegatev1.Detector) detector.Conf
 	}
 	if d := m.GetRecoil(); d != nil {
 		c.Recoil = &detector.Recoil{
-			Theta: polarForm(d.GetTheta()), MomentumMinGeV: d.GetMomentumMinGev(),
+			Theta: polarForm(d.GetTheta()), MinMomentumGeV: d.GetMinMomentumGev(),
 			AngleSigmaRad: d.GetAngleSigmaRad(), Efficiency: orOne(d.Efficiency),
 		}
 	}
 	if d := m.GetNeutrals(); d != nil {
 		c.Neutrals = &detector.Neutrals{
-			Theta: polarForm(d.GetTheta()), MomentumMinGeV: d.GetMomentumMinGev(),
+			Theta: polarForm(d.GetTheta()), MinMomentumGeV: d.GetMinMomentumGev(),
 			AngleSigmaRad: d.GetAngleSigmaRad(), Efficiency: orOne(d.Efficiency),
 		}
 	}
@@ -37,7 +37,7 @@ func (f *former) detectorForm(path string, m *kinegatev1.Detector) detector.Conf
 	}
 	if d := m.GetDisplaced(); d != nil {
 		c.Displaced = &detector.Displaced{
-			DistanceMinM: d.GetDistanceMinM(), SigmaXM: d.GetSigmaXM(), SigmaYM: d.GetSigmaYM(), SigmaZM: d.GetSigmaZM(),
+			MinDistanceM: d.GetMinDistanceM(), SigmaXM: d.GetSigmaXM(), SigmaYM: d.GetSigmaYM(), SigmaZM: d.GetSigmaZM(),
 			Efficiency: orOne(d.Efficiency),
 		}
 	}
@@ -65,7 +65,7 @@ func calorimeterForm(d *kinegatev1.Calorimeter) *detector.Calorimeter {
 
 func (f *former) trackerForm(path string, d *kinegatev1.Tracker) *detector.Tracker {
 	t := &detector.Tracker{
-		Theta: polarForm(d.GetTheta()), MomentumMinGeV: d.GetMomentumMinGev(), Constant: d.GetConstant(), PerGeV: d.GetPerGev(),
+		Theta: polarForm(d.GetTheta()), MinMomentumGeV: d.GetMinMomentumGev(), Constant: d.GetConstant(), PerGeV: d.GetPerGev(),
 		AngleSigmaRad: d.GetAngleSigmaRad(), Efficiency: orOne(d.Efficiency), Identify: d.GetIdentify(),
 	}
 	for i, x := range d.GetConfusions() {

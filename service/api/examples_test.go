@@ -90,11 +90,11 @@ func exampleDetector() *kinegatev1.Detector {
 			Theta: theta, RadiusM: 1, Stochastic: 0.02, ThetaSigmaRad: 0.005, PhiSigmaRad: 0.005, ThresholdGev: 0.02,
 		},
 		Tracker: &kinegatev1.Tracker{
-			Theta: proto.CloneOf(theta), MomentumMinGev: 0.05, Constant: 0.01, AngleSigmaRad: 0.003, Identify: true,
+			Theta: proto.CloneOf(theta), MinMomentumGev: 0.05, Constant: 0.01, AngleSigmaRad: 0.003, Identify: true,
 		},
 		Tagger:    &kinegatev1.Tagger{SigmaGev: 0.005, TimeSigmaNs: 0.5},
 		Vertex:    &kinegatev1.VertexDetector{SigmaXM: 1e-4, SigmaYM: 1e-4, SigmaZM: 1e-3},
-		Displaced: &kinegatev1.DisplacedVertexDetector{DistanceMinM: 0.002, SigmaXM: 5e-4, SigmaYM: 5e-4, SigmaZM: 1e-3},
+		Displaced: &kinegatev1.DisplacedVertexDetector{MinDistanceM: 0.002, SigmaXM: 5e-4, SigmaYM: 5e-4, SigmaZM: 1e-3},
 	}
 }
 

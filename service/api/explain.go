@@ -113,7 +113,7 @@ func assignmentMessage(a *selection.AssignmentExplanation) *kinegatev1.Assignmen
 func fitMessage(f *selection.FitExplanation) *kinegatev1.FitExplanation {
 	m := &kinegatev1.FitExplanation{
 		Status: kinegatev1.FitStatus(f.Result.Status), ChiSquare: f.Result.ChiSquare,
-		Probability: finite(f.Result.Probability), IterationCount: int32(f.Result.Iterations), //nolint:gosec // at most some hundred
+		Probability: finite(f.Result.Probability), IterationCount: int64(f.Result.Iterations),
 		VertexZM: finite(f.VertexZ), VertexZSigmaM: finite(f.VertexSigma),
 	}
 	for k := range f.Constraints {

@@ -83,14 +83,14 @@ func smallDetector() *kinegatev1.Detector {
 			SplitOff: &kinegatev1.SplitOff{Probability: 0.1, MinShare: 0.1, MaxShare: 0.2, MinAngleRad: 0.1, MaxAngleRad: 0.2},
 		},
 		Tracker: &kinegatev1.Tracker{
-			Theta: theta(), MomentumMinGev: 0.1, Constant: 0.01, AngleSigmaRad: 0.003, Identify: true, Efficiency: new(0.9),
+			Theta: theta(), MinMomentumGev: 0.1, Constant: 0.01, AngleSigmaRad: 0.003, Identify: true, Efficiency: new(0.9),
 			Confusions: []*kinegatev1.SpeciesConfusion{{
 				Species: kinegatev1.Species_SPECIES_PROTON, TakenFor: kinegatev1.Species_SPECIES_PION, Probability: 0.1,
 			}},
 		},
 		Tagger:    &kinegatev1.Tagger{SigmaGev: 0.005, TimeSigmaNs: 1},
 		Vertex:    &kinegatev1.VertexDetector{SigmaXM: 1e-4, SigmaYM: 1e-4, SigmaZM: 1e-3},
-		Displaced: &kinegatev1.DisplacedVertexDetector{DistanceMinM: 0.002, SigmaXM: 5e-4, SigmaYM: 5e-4, SigmaZM: 1e-3, Efficiency: new(0.95)},
+		Displaced: &kinegatev1.DisplacedVertexDetector{MinDistanceM: 0.002, SigmaXM: 5e-4, SigmaYM: 5e-4, SigmaZM: 1e-3, Efficiency: new(0.95)},
 	}
 }
 

@@ -129,8 +129,8 @@ func (g *generationForm) spectrum(from, path string, m *kinegatev1.BeamSpectrum,
 		return generation.Fixed{EnergyGeV: total}
 	case *kinegatev1.BeamSpectrum_Even:
 		here := path + ".even"
-		g.move(from+".low_gev", here+".min_gev")
-		g.move(from+".high_gev", here+".max_gev")
+		g.move(from+".min_gev", here+".min_gev")
+		g.move(from+".max_gev", here+".max_gev")
 		even := generation.Flat{LowGeV: kind.Even.GetMinGev(), HighGeV: kind.Even.GetMaxGev()}
 		if even.LowGeV > 0 && !(even.HighGeV > even.LowGeV) {
 			g.faults = append(g.faults, fault.Number(here+".max_gev", even.HighGeV, "> min_gev and finite"))
@@ -143,7 +143,7 @@ func (g *generationForm) spectrum(from, path string, m *kinegatev1.BeamSpectrum,
 		g.photonBeam(here, p)
 		b := generation.Bremsstrahlung{
 			ElectronGeV: kind.Bremsstrahlung.GetElectronGev(),
-			LowGeV:      kind.Bremsstrahlung.GetLowGev(), HighGeV: kind.Bremsstrahlung.GetHighGev(),
+			LowGeV:      kind.Bremsstrahlung.GetMinGev(), HighGeV: kind.Bremsstrahlung.GetMaxGev(),
 			CompleteScreening: kind.Bremsstrahlung.GetCompleteScreening(),
 		}
 		n := kind.Bremsstrahlung.GetChannelCount()
@@ -220,7 +220,7 @@ func (g *generationForm) backscatter(path string, m *kinegatev1.BackscatterSpect
 	b = generation.LaserBackscatter{
 		BeamGeV: total, MassGeV: lepton.Mass, LightGeV: m.GetLightEnergyGev(),
 		AngleRad: angleOf(m.AngleBetweenBeamsRad != nil, m.GetAngleBetweenBeamsRad()),
-		LowGeV:   m.GetLowGev(), HighGeV: m.GetHighGev(),
+		LowGeV:   m.GetMinGev(), HighGeV: m.GetMaxGev(),
 	}
 	if _, err := photon.NewBackscatter(b.BeamGeV, b.MassGeV, b.LightGeV, b.AngleRad); err != nil {
 		g.found(err, func(field string) string {
@@ -232,7 +232,7 @@ func (g *generationForm) backscatter(path string, m *kinegatev1.BackscatterSpect
 		return b, false
 	}
 	if b.LowGeV < 0 || b.HighGeV < 0 {
-		g.faults = append(g.faults, fault.Number(path+".low_gev", min(b.LowGeV, b.HighGeV), ">= 0"))
+		g.faults = append(g.faults, fault.Number(path+".min_gev", min(b.LowGeV, b.HighGeV), ">= 0"))
 	}
 	return b, true
 }

@@ -16,7 +16,7 @@ func heavyMixture() *kinegatev1.Generation {
 		Kind: &kinegatev1.GenerationInitialState_BeamOnTarget{BeamOnTarget: &kinegatev1.SpectrumOnTarget{
 			Beam: &kinegatev1.BeamSpectrum{Kind: &kinegatev1.BeamSpectrum_Backscatter{Backscatter: &kinegatev1.BackscatterSpectrum{
 				Beam:           &kinegatev1.BeamMotion{Value: &kinegatev1.BeamMotion_TotalEnergyGev{TotalEnergyGev: 8}},
-				LightEnergyGev: 3.5e-9, LowGev: 1.3,
+				LightEnergyGev: 3.5e-9, MinGev: 1.3,
 			}}},
 		}},
 	}}

@@ -76,10 +76,10 @@ func (g *generationForm) override(path string, number int, p place, m *kinegatev
 		}
 		o.Shape = &generation.LineShape{
 			L: wave, RadiusPerGeV: shape.GetRadiusPerGev(), ConstantWidth: shape.GetConstantWidth(),
-			LowGeV: shape.GetLowGev(), HighGeV: shape.GetHighGev(),
+			LowGeV: shape.GetMinGev(), HighGeV: shape.GetMaxGev(),
 		}
-		if low, high := shape.GetLowGev(), shape.GetHighGev(); high > 0 && high <= low {
-			g.faults = append(g.faults, fault.Number(here+".high_gev", high, "> low_gev"))
+		if low, high := shape.GetMinGev(), shape.GetMaxGev(); high > 0 && high <= low {
+			g.faults = append(g.faults, fault.Number(here+".max_gev", high, "> low_gev"))
 		}
 	}
 	var name string

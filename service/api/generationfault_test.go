@@ -30,11 +30,11 @@ func TestGenerationFaults(t *testing.T) {
 		}, codes.InvalidArgument, "channels[0].reaction", `"13 products": invalid, allowed: 2 to 12 products`},
 		"line shape that no mass fits": {func(g *kinegatev1.Generation) {
 			g.Channels = reactions("gamma p -> p rho0, rho0 -> pi+ pi-")
-			g.Channels[0].Decays = []*kinegatev1.DecayOptions{{Product: "rho0", LineShape: &kinegatev1.LineShape{LowGev: 0.1, HighGev: 0.2}}}
-		}, codes.InvalidArgument, "channels[0].decays[0].line_shape.high_gev", "lowest mass"},
+			g.Channels[0].Decays = []*kinegatev1.DecayOptions{{Product: "rho0", LineShape: &kinegatev1.LineShape{MinGev: 0.1, MaxGev: 0.2}}}
+		}, codes.InvalidArgument, "channels[0].decays[0].line_shape.max_gev", "lowest mass"},
 		"mass range beyond the energy": {func(g *kinegatev1.Generation) {
 			g.Channels = reactions("gamma p -> p rho0, rho0 -> pi+ pi-")
-			g.Channels[0].Decays = []*kinegatev1.DecayOptions{{Product: "rho0", LineShape: &kinegatev1.LineShape{LowGev: 1.5}}}
+			g.Channels[0].Decays = []*kinegatev1.DecayOptions{{Product: "rho0", LineShape: &kinegatev1.LineShape{MinGev: 1.5}}}
 		}, codes.FailedPrecondition, "channels[0]", "closed"},
 		"decay of too much mass": {func(g *kinegatev1.Generation) { g.Channels = reactions("gamma p -> p pi0, pi0 -> mu+ mu-") },
 			codes.InvalidArgument, "channels[0].reaction", "energy is not conserved in pi0 -> mu+ mu-"},
@@ -56,8 +56,8 @@ func TestGenerationFaults(t *testing.T) {
 		"no beam":          {func(g *kinegatev1.Generation) { g.InitialState = nil }, codes.InvalidArgument, "initial_state", "only a decay"},
 		"range":            {func(g *kinegatev1.Generation) { g.InitialState = tagged(2, 1) }, codes.InvalidArgument, "initial_state.beam_on_target.beam.even.max_gev", "> min_gev"},
 		"bremsstrahlung": {func(g *kinegatev1.Generation) {
-			g.InitialState.GetBeamOnTarget().Beam = brems(&kinegatev1.BremsstrahlungSpectrum{ElectronGev: 1, LowGev: 1.2, HighGev: 2})
-		}, codes.InvalidArgument, "initial_state.beam_on_target.beam.bremsstrahlung.electron_gev", "high_gev"},
+			g.InitialState.GetBeamOnTarget().Beam = brems(&kinegatev1.BremsstrahlungSpectrum{ElectronGev: 1, MinGev: 1.2, MaxGev: 2})
+		}, codes.InvalidArgument, "initial_state.beam_on_target.beam.bremsstrahlung.electron_gev", "max_gev"},
 		"light": {func(g *kinegatev1.Generation) {
 			g.InitialState.GetBeamOnTarget().Beam = &kinegatev1.BeamSpectrum{Kind: &kinegatev1.BeamSpectrum_Backscatter{
 				Backscatter: &kinegatev1.BackscatterSpectrum{
@@ -139,7 +139,7 @@ func TestGenerateEventsSliceFaults(t *testing.T) {
 func TestGenerateEventsUnseen(t *testing.T) {
 	g := sample()
 	g.Detector = &kinegatev1.Detector{Tracker: &kinegatev1.Tracker{
-		Theta: &kinegatev1.PolarRange{MinRad: 0.1, MaxRad: 2}, MomentumMinGev: 100, Constant: 0.01, AngleSigmaRad: 0.01,
+		Theta: &kinegatev1.PolarRange{MinRad: 0.1, MaxRad: 2}, MinMomentumGev: 100, Constant: 0.01, AngleSigmaRad: 0.01,
 	}}
 	summary := mustGenerate(t, newServices(t), &kinegatev1.GenerateEventsRequest{Generation: g, EventCount: 100}).summary()
 	if summary.GetSeenEventCount() != 0 || len(summary.GetRemarks()) != 1 || !strings.Contains(summary.GetRemarks()[0], "acceptance") {
@@ -242,7 +242,7 @@ func FuzzGeneration(f *testing.F) {
 	f.Add("channels: [{reaction: \"gamma gamma -> e+ e-\", angle: {product: \"e-\", law: ANGULAR_LAW_PAIR_CREATION}}]\n" +
 		"initial_state: {two_beams: {beam1: {even: {min_gev: 1, max_gev: 2}}, beam2: {fixed: {total_energy_gev: 1e-3}}}}\n")
 	f.Add("channels: [{reaction: \"gamma n -> n pi0\"}]\ninitial_state: {beam_on_target: {bound_nucleon: {nucleus: d, fermi_momentum_gev: 0.2}, " +
-		"beam: {bremsstrahlung: {electron_gev: 3, low_gev: 1, high_gev: 2, channel_count: 10}}}}\n")
+		"beam: {bremsstrahlung: {electron_gev: 3, min_gev: 1, max_gev: 2, channel_count: 10}}}}\n")
 	s := newServices(f)
 	f.Fuzz(func(t *testing.T, text string) {
 		reply, err := s.generation.CheckGeneration(t.Context(), &kinegatev1.CheckGenerationRequest{

@@ -182,7 +182,7 @@ func TestCompton(t *testing.T) {
 			t.Fatal(err)
 		}
 		a := m.GetCompton()
-		closeTo(t, "straight back", a.GetPoints()[0].GetPhotonEnergyGev(), b.GetBackscatter().GetHighestGev(), 1e-14)
+		closeTo(t, "straight back", a.GetPoints()[0].GetPhotonEnergyGev(), b.GetBackscatter().GetMaxGev(), 1e-14)
 		closeTo(t, "total", a.GetTotalBarn(), b.GetBackscatter().GetTotalBarn(), 1e-14)
 		closeTo(t, "list", a.GetTotalsBarn()[0], a.GetTotalBarn(), 0)
 		if a.GetAtRest() != nil || a.GetPoints()[0].RecoilAngleRad != nil {
@@ -214,17 +214,17 @@ func TestBackscatter(t *testing.T) {
 				t.Fatal(err)
 			}
 			a := m.GetBackscatter()
-			closeTo(t, "edge", a.GetHighestGev(), c.edge, c.bound)
+			closeTo(t, "edge", a.GetMaxGev(), c.edge, c.bound)
 			points := a.GetPoints()
-			if len(points) != 11 || points[0].GetEnergyGev() != a.GetLowestGev() || points[10].GetEnergyGev() != a.GetHighestGev() {
+			if len(points) != 11 || points[0].GetEnergyGev() != a.GetMinGev() || points[10].GetEnergyGev() != a.GetMaxGev() {
 				t.Fatalf("points %v", points)
 			}
 			// The helicity of the light is turned round at the edge.
 			closeTo(t, "helicity at the edge", points[10].GetCircularDegree(), -1, 1e-9)
-			closeTo(t, "forward", a.GetAngles()[0].GetEnergyGev(), a.GetHighestGev(), 1e-14)
+			closeTo(t, "forward", a.GetAngles()[0].GetEnergyGev(), a.GetMaxGev(), 1e-14)
 			closeTo(t, "everything", a.GetAngles()[1].GetFractionWithin(), 1, 1e-13)
 			closeTo(t, "windows", a.GetWindowFractions()[0]+a.GetWindowFractions()[1], 1, 1e-13)
-			if mean := a.GetMeanGev(); !(mean > a.GetHighestGev()/3 && mean < a.GetHighestGev()*2/3) {
+			if mean := a.GetMeanGev(); !(mean > a.GetMaxGev()/3 && mean < a.GetMaxGev()*2/3) {
 				t.Errorf("mean %g", mean)
 			}
 		})

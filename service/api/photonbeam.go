@@ -35,8 +35,8 @@ func (s *photonService) backscatter(
 		})
 	}
 	a := &kinegatev1.BackscatterAnswer{
-		Particle: p.Name, MassGev: p.Mass, BeamEnergyGev: total, Invariant: b.Invariant(),
-		LowestGev: b.Lowest(), HighestGev: b.Highest(), MeanGev: b.MeanEnergy(), TotalBarn: b.TotalBarn(),
+		Particle: p.Name, MassGev: p.Mass, BeamEnergyGev: total, RelativeExcess: b.Invariant(),
+		MinGev: b.Lowest(), MaxGev: b.Highest(), MeanGev: b.MeanEnergy(), TotalBarn: b.TotalBarn(),
 	}
 	m.Answer = &kinegatev1.DescribePhotonProcessResponse_Backscatter{Backscatter: a}
 	m.Omissions = []string{

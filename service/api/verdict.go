@@ -19,7 +19,7 @@ func (c *verdictColumns) block(sequence int64, digest string, v *event.VerdictBl
 	m := &kinegatev1.VerdictBlock{
 		Sequence:        sequence,
 		SelectionDigest: digest,
-		EventCount:      int32(len(v.Status)), //nolint:gosec // a block has at most 4,096 events
+		EventCount:      int64(len(v.Status)),
 		Statuses:        write(c, v.Status, column.AppendUint8),
 		Gate:            v.Gate,
 	}
@@ -42,7 +42,7 @@ func (c *verdictColumns) entries(e *event.Entries) *kinegatev1.EntryColumns {
 		BeamRows:          write(c, e.BeamRow, column.AppendInt16),
 		Weights:           write(c, e.Weight, column.AppendFloat64),
 		Statuses:          write(c, e.Status, column.AppendUint8),
-		AssignmentsTried:  write(c, e.Tried, column.AppendInt32),
+		AssignmentCounts:  write(c, e.Tried, column.AppendInt32),
 		AssignmentOffsets: write(c, e.AssignmentOffsets, column.AppendInt32),
 		Assignments:       write(c, e.Assignment, column.AppendInt16),
 		ObservableOffsets: write(c, e.ObservableOffsets, column.AppendInt32),
@@ -60,7 +60,7 @@ func (c *verdictColumns) entries(e *event.Entries) *kinegatev1.EntryColumns {
 			ChiSquares:       write(c, f.ChiSquare, column.AppendFloat64),
 			DegreesOfFreedom: write(c, f.DegreesOfFreedom, column.AppendInt16),
 			Probabilities:    write(c, f.Probability, column.AppendFloat64),
-			Iterations:       write(c, f.Iterations, column.AppendInt16),
+			IterationCounts:  write(c, f.Iterations, column.AppendInt16),
 		}
 	}
 	return m

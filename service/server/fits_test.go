@@ -119,7 +119,7 @@ func TestFitsEndToEnd(t *testing.T) {
 			}
 			a := x.GetHypotheses()[0].GetAssignments()[0]
 			f := a.GetFit()
-			if !a.GetBest() || !a.GetPassed() || x.GetGate() != v.Gate(i) || int(x.GetHypotheses()[0].GetAssignmentCount()) != e.Tried ||
+			if !a.GetBest() || !a.GetPassed() || x.GetGate() != v.Gate(i) || int(x.GetHypotheses()[0].GetAssignmentCount()) != e.AssignmentCount ||
 				math.Float64bits(f.GetChiSquare()) != math.Float64bits(e.Fit.ChiSquare) || len(f.GetConstraints()) != 6 || len(f.GetParticles()) != 6 {
 				t.Errorf("event %d: entry %+v is explained by %v", i, e, a)
 			}

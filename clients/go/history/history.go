@@ -241,7 +241,7 @@ func (e *entries) append(b []byte, i int) []byte {
 		b = append(b, slot(e.GetBeamRows(), k, sizeInt16)...)
 		b = append(b, slot(e.GetWeights(), k, sizeFloat64)...)
 		b = append(b, slot(e.GetStatuses(), k, 1)...)
-		b = append(b, slot(e.GetAssignmentsTried(), k, sizeInt32)...)
+		b = append(b, slot(e.GetAssignmentCounts(), k, sizeInt32)...)
 		b = part(b, e.GetAssignments(), e.assignments[k], e.assignments[k+1], sizeInt16)
 		b = part(b, e.GetObservables(), e.observables[k], e.observables[k+1], sizeFloat64)
 		if e.ObservableUncertainties != nil {
@@ -262,7 +262,7 @@ func fit(b []byte, fits *kinegatev1.FitColumns, k int) []byte {
 	b = append(b, slot(fits.GetChiSquares(), k, sizeFloat64)...)
 	b = append(b, slot(fits.GetDegreesOfFreedom(), k, sizeInt16)...)
 	b = append(b, slot(fits.GetProbabilities(), k, sizeFloat64)...)
-	return append(b, slot(fits.GetIterations(), k, sizeInt16)...)
+	return append(b, slot(fits.GetIterationCounts(), k, sizeInt16)...)
 }
 
 // part adds a range of a column behind its length.

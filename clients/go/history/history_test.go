@@ -21,12 +21,12 @@ func run(blocks int) (events []*kinegatev1.EventBlock, verdicts []*kinegatev1.Ve
 			Entries: &kinegatev1.EntryColumns{
 				Offsets: column.Int32([]int32{0, 1, 2, 2}), HypothesisIndices: column.Int16([]int16{0, 0}),
 				BeamRows: column.Int16([]int16{-1, -1}), Weights: column.Float64([]float64{1, 1}), Statuses: []byte{1, 2},
-				AssignmentsTried: column.Int32([]int32{1, 1}), AssignmentOffsets: column.Int32([]int32{0, 2, 4}),
+				AssignmentCounts: column.Int32([]int32{1, 1}), AssignmentOffsets: column.Int32([]int32{0, 2, 4}),
 				Assignments: column.Int16([]int16{0, 1, 1, 0}), ObservableOffsets: column.Int32([]int32{0, 1, 2}),
 				Observables: column.Float64([]float64{0.25, float64(i)}), ObservableUncertainties: column.Float64([]float64{0.5, 0.125}),
 				Fits: &kinegatev1.FitColumns{
 					Statuses: []byte{1, 1}, ChiSquares: column.Float64([]float64{3, float64(i)}), DegreesOfFreedom: column.Int16([]int16{1, 1}),
-					Probabilities: column.Float64([]float64{0.5, 0.75}), Iterations: column.Int16([]int16{3, 4}),
+					Probabilities: column.Float64([]float64{0.5, 0.75}), IterationCounts: column.Int16([]int16{3, 4}),
 				},
 			},
 		})

@@ -35,12 +35,12 @@ class Backscatter(PhotonProcess):
     @property
     def lowest(self) -> float:
         """Smallest energy of a scattered photon."""
-        return float(self.answer.lowest_gev)
+        return float(self.answer.min_gev)
 
     @property
     def edge(self) -> float:
         """Largest energy of a scattered photon."""
-        return float(self.answer.highest_gev)
+        return float(self.answer.max_gev)
 
     @property
     def mean(self) -> float:
@@ -48,9 +48,9 @@ class Backscatter(PhotonProcess):
         return float(self.answer.mean_gev)
 
     @property
-    def invariant(self) -> float:
+    def relative_excess(self) -> float:
         """S over the square of the mass, minus 1."""
-        return float(self.answer.invariant)
+        return float(self.answer.relative_excess)
 
     @property
     def total(self) -> float:
@@ -99,7 +99,7 @@ class Backscatter(PhotonProcess):
             ["beam", units.format_energy(self.answer.beam_energy_gev)],
             ["photons", f"{low} to {high}, mean {units.format_energy(self.mean)}"],
             ["cross-section", barns(self.total)],
-            ["s over the mass squared, minus 1", f"{self.invariant:.6g}"],
+            ["s over the mass squared, minus 1", f"{self.relative_excess:.6g}"],
         ]
         rows += [
             [

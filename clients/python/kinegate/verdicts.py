@@ -55,7 +55,7 @@ class Entries:
     """1, or the weight of the candidate's time window."""
     accepted: NDArray[np.bool_]
     """The assignment passes every condition."""
-    assignments_tried: NDArray[np.int32]
+    assignment_counts: NDArray[np.int32]
     """Number of assignments tried."""
     assignment_offsets: NDArray[np.int32]
     """First assignment element of each entry and the total, shape (entries + 1,)."""
@@ -77,7 +77,7 @@ class Entries:
     """Degrees of freedom of each fit; None without fits."""
     probability: NDArray[np.float64] | None = None
     """Probability of a larger chi-square, NaN unless converged; None without fits."""
-    iterations: NDArray[np.int16] | None = None
+    iteration_counts: NDArray[np.int16] | None = None
     """Steps of each fit; None without fits."""
 
     @property
@@ -130,7 +130,7 @@ class Fits:
     """The fit found its minimum."""
     status_names: NDArray[np.object_]
     """How each fit ended in words, such as "CONVERGED"."""
-    iterations: NDArray[np.int16]
+    iteration_counts: NDArray[np.int16]
     """Steps of each fit."""
     weights: NDArray[np.float64]
     """Weights of the entries."""
@@ -298,7 +298,7 @@ class Verdicts:
             or entries.chi_square is None
             or entries.degrees_of_freedom is None
             or entries.probability is None
-            or entries.iterations is None
+            or entries.iteration_counts is None
         ):
             raise ArgumentError(f"{hypothesis!r} has no fit", "hypothesis", hypothesis)
         rows = np.flatnonzero(entries.hypothesis == index)
@@ -309,7 +309,7 @@ class Verdicts:
             entries.probability[rows],
             statuses == int(fit_pb2.FIT_STATUS_CONVERGED),
             _FIT_STATUS_NAMES[statuses],
-            entries.iterations[rows],
+            entries.iteration_counts[rows],
             entries.weight[rows],
             entries.events[rows],
             rows,
@@ -362,7 +362,7 @@ def _entries(message: verdict_pb2.EntryColumns) -> Entries:
         columns.view(message.beam_rows, np.int16),
         columns.view(message.weights, np.float64),
         columns.view(message.statuses, np.uint8) == int(verdict_pb2.ENTRY_STATUS_ACCEPTED),
-        columns.view(message.assignments_tried, np.int32),
+        columns.view(message.assignment_counts, np.int32),
         columns.view(message.assignment_offsets, np.int32),
         columns.view(message.assignments, np.int16),
         columns.view(message.observable_offsets, np.int32),
@@ -385,7 +385,7 @@ def _fit_columns(message: verdict_pb2.EntryColumns) -> dict[str, NDArray[Any]]:
             "chi_square": columns.view(fits.chi_squares, np.float64),
             "degrees_of_freedom": columns.view(fits.degrees_of_freedom, np.int16),
             "probability": columns.view(fits.probabilities, np.float64),
-            "iterations": columns.view(fits.iterations, np.int16),
+            "iteration_counts": columns.view(fits.iteration_counts, np.int16),
         }
     return found
 

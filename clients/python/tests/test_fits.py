@@ -27,7 +27,7 @@ def message() -> verdict_pb2.VerdictBlock:
         beam_rows=np.array([-1, -1, -1], "<i2").tobytes(),
         weights=np.ones(3, "<f8").tobytes(),
         statuses=bytes([1, 1, 3]),
-        assignments_tried=np.ones(3, "<i4").tobytes(),
+        assignment_counts=np.ones(3, "<i4").tobytes(),
         assignment_offsets=np.array([0, 2, 4, 6], "<i4").tobytes(),
         assignments=np.array([0, 1, 0, 1, 0, 1], "<i2").tobytes(),
         observable_offsets=np.array([0, 1, 2, 3], "<i4").tobytes(),
@@ -38,7 +38,7 @@ def message() -> verdict_pb2.VerdictBlock:
             chi_squares=np.array([nan, 0.5, 99.0], "<f8").tobytes(),
             degrees_of_freedom=np.array([0, 1, 1], "<i2").tobytes(),
             probabilities=np.array([nan, 0.48, nan], "<f8").tobytes(),
-            iterations=np.array([0, 4, 50], "<i2").tobytes(),
+            iteration_counts=np.array([0, 4, 50], "<i2").tobytes(),
         ),
     )
     bits = [verdict_pb2.HypothesisBits(accepted=bytes([b])) for b in (1, 1)]
@@ -60,7 +60,7 @@ def test_fits_of_a_hypothesis(joined: bool) -> None:  # noqa: FBT001
     assert fits.converged.tolist() == [True, False] * times
     assert fits.status_names.tolist() == ["CONVERGED", "INFEASIBLE"] * times
     assert fits.probability[0] == 0.48
-    assert fits.iterations.tolist() == [4, 50] * times
+    assert fits.iteration_counts.tolist() == [4, 50] * times
     mass = found.observable("fitted", "M")
     assert mass.uncertainties is not None
     assert mass.uncertainties.tolist() == [0.01, 0.02] * times

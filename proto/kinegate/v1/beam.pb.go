@@ -471,12 +471,12 @@ func (*BeamSpectrum_Backscatter) isBeamSpectrum_Kind() {}
 // energy E.
 type BremsstrahlungSpectrum struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
-	// E, at least high_gev.
+	// E, at least max_gev.
 	ElectronGev float64 `protobuf:"fixed64,1,opt,name=electron_gev,json=electronGev,proto3" json:"electron_gev,omitempty"`
 	// Lowest photon energy, above 0.
-	LowGev float64 `protobuf:"fixed64,2,opt,name=low_gev,json=lowGev,proto3" json:"low_gev,omitempty"`
-	// Highest photon energy, above low_gev.
-	HighGev float64 `protobuf:"fixed64,3,opt,name=high_gev,json=highGev,proto3" json:"high_gev,omitempty"`
+	MinGev float64 `protobuf:"fixed64,2,opt,name=min_gev,json=minGev,proto3" json:"min_gev,omitempty"`
+	// Highest photon energy, above min_gev.
+	MaxGev float64 `protobuf:"fixed64,3,opt,name=max_gev,json=maxGev,proto3" json:"max_gev,omitempty"`
 	// With the factor of complete screening.
 	CompleteScreening bool `protobuf:"varint,4,opt,name=complete_screening,json=completeScreening,proto3" json:"complete_screening,omitempty"`
 	// Divide the range into this many tagger channels of equal width, the flux uniform
@@ -523,16 +523,16 @@ func (x *BremsstrahlungSpectrum) GetElectronGev() float64 {
 	return 0
 }
 
-func (x *BremsstrahlungSpectrum) GetLowGev() float64 {
+func (x *BremsstrahlungSpectrum) GetMinGev() float64 {
 	if x != nil {
-		return x.LowGev
+		return x.MinGev
 	}
 	return 0
 }
 
-func (x *BremsstrahlungSpectrum) GetHighGev() float64 {
+func (x *BremsstrahlungSpectrum) GetMaxGev() float64 {
 	if x != nil {
-		return x.HighGev
+		return x.MaxGev
 	}
 	return 0
 }
@@ -620,9 +620,9 @@ type BackscatterSpectrum struct {
 	// Absent means head on.
 	AngleBetweenBeamsRad *float64 `protobuf:"fixed64,4,opt,name=angle_between_beams_rad,json=angleBetweenBeamsRad,proto3,oneof" json:"angle_between_beams_rad,omitempty"`
 	// Lowest energy of a scattered photon; 0 means the end of the spectrum.
-	LowGev float64 `protobuf:"fixed64,5,opt,name=low_gev,json=lowGev,proto3" json:"low_gev,omitempty"`
+	MinGev float64 `protobuf:"fixed64,5,opt,name=min_gev,json=minGev,proto3" json:"min_gev,omitempty"`
 	// Highest energy of a scattered photon; 0 means the edge.
-	HighGev       float64 `protobuf:"fixed64,6,opt,name=high_gev,json=highGev,proto3" json:"high_gev,omitempty"`
+	MaxGev        float64 `protobuf:"fixed64,6,opt,name=max_gev,json=maxGev,proto3" json:"max_gev,omitempty"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
 }
@@ -685,16 +685,16 @@ func (x *BackscatterSpectrum) GetAngleBetweenBeamsRad() float64 {
 	return 0
 }
 
-func (x *BackscatterSpectrum) GetLowGev() float64 {
+func (x *BackscatterSpectrum) GetMinGev() float64 {
 	if x != nil {
-		return x.LowGev
+		return x.MinGev
 	}
 	return 0
 }
 
-func (x *BackscatterSpectrum) GetHighGev() float64 {
+func (x *BackscatterSpectrum) GetMaxGev() float64 {
 	if x != nil {
-		return x.HighGev
+		return x.MaxGev
 	}
 	return 0
 }
@@ -879,23 +879,23 @@ const file_kinegate_v1_beam_proto_rawDesc = "" +
 	"\x0ebremsstrahlung\x18\x03 \x01(\v2#.kinegate.v1.BremsstrahlungSpectrumH\x00R\x0ebremsstrahlung\x12:\n" +
 	"\thistogram\x18\x04 \x01(\v2\x1a.kinegate.v1.FluxHistogramH\x00R\thistogram\x12D\n" +
 	"\vbackscatter\x18\x05 \x01(\v2 .kinegate.v1.BackscatterSpectrumH\x00R\vbackscatterB\x06\n" +
-	"\x04kind\"\xc3\x01\n" +
+	"\x04kind\"\xc1\x01\n" +
 	"\x16BremsstrahlungSpectrum\x12!\n" +
 	"\felectron_gev\x18\x01 \x01(\x01R\velectronGev\x12\x17\n" +
-	"\alow_gev\x18\x02 \x01(\x01R\x06lowGev\x12\x19\n" +
-	"\bhigh_gev\x18\x03 \x01(\x01R\ahighGev\x12-\n" +
+	"\amin_gev\x18\x02 \x01(\x01R\x06minGev\x12\x17\n" +
+	"\amax_gev\x18\x03 \x01(\x01R\x06maxGev\x12-\n" +
 	"\x12complete_screening\x18\x04 \x01(\bR\x11completeScreening\x12#\n" +
 	"\rchannel_count\x18\x05 \x01(\x03R\fchannelCount\"H\n" +
 	"\rFluxHistogram\x12\x1b\n" +
 	"\tedges_gev\x18\x01 \x03(\x01R\bedgesGev\x12\x1a\n" +
-	"\bcontents\x18\x02 \x03(\x01R\bcontents\"\x94\x02\n" +
+	"\bcontents\x18\x02 \x03(\x01R\bcontents\"\x92\x02\n" +
 	"\x13BackscatterSpectrum\x12\x1a\n" +
 	"\bparticle\x18\x01 \x01(\tR\bparticle\x12+\n" +
 	"\x04beam\x18\x02 \x01(\v2\x17.kinegate.v1.BeamMotionR\x04beam\x12(\n" +
 	"\x10light_energy_gev\x18\x03 \x01(\x01R\x0elightEnergyGev\x12:\n" +
 	"\x17angle_between_beams_rad\x18\x04 \x01(\x01H\x00R\x14angleBetweenBeamsRad\x88\x01\x01\x12\x17\n" +
-	"\alow_gev\x18\x05 \x01(\x01R\x06lowGev\x12\x19\n" +
-	"\bhigh_gev\x18\x06 \x01(\x01R\ahighGevB\x1a\n" +
+	"\amin_gev\x18\x05 \x01(\x01R\x06minGev\x12\x17\n" +
+	"\amax_gev\x18\x06 \x01(\x01R\x06maxGevB\x1a\n" +
 	"\x18_angle_between_beams_rad\"\xbb\x01\n" +
 	"\fTargetRegion\x12\x1c\n" +
 	"\n" +

@@ -118,9 +118,9 @@ type ListOpenChannelsRequest struct {
 	// Least number of bodies, within [1, 5]; 0 means 2, or max_body_count where that
 	// is 1. One body alone is reached only at the one energy at which s is its mass
 	// squared.
-	MinBodyCount int32 `protobuf:"varint,4,opt,name=min_body_count,json=minBodyCount,proto3" json:"min_body_count,omitempty"`
+	MinBodyCount int64 `protobuf:"varint,4,opt,name=min_body_count,json=minBodyCount,proto3" json:"min_body_count,omitempty"`
 	// Largest number of bodies, within [1, 5]; 0 means 2.
-	MaxBodyCount int32 `protobuf:"varint,5,opt,name=max_body_count,json=maxBodyCount,proto3" json:"max_body_count,omitempty"`
+	MaxBodyCount int64 `protobuf:"varint,5,opt,name=max_body_count,json=maxBodyCount,proto3" json:"max_body_count,omitempty"`
 	// Laws that are not applied.
 	IgnoredLaws []ConservationLaw `protobuf:"varint,6,rep,packed,name=ignored_laws,json=ignoredLaws,proto3,enum=kinegate.v1.ConservationLaw" json:"ignored_laws,omitempty"`
 	// Also apply what spin, C and Bose symmetry forbid: an odd change in the number
@@ -188,14 +188,14 @@ func (x *ListOpenChannelsRequest) GetProducts() []string {
 	return nil
 }
 
-func (x *ListOpenChannelsRequest) GetMinBodyCount() int32 {
+func (x *ListOpenChannelsRequest) GetMinBodyCount() int64 {
 	if x != nil {
 		return x.MinBodyCount
 	}
 	return 0
 }
 
-func (x *ListOpenChannelsRequest) GetMaxBodyCount() int32 {
+func (x *ListOpenChannelsRequest) GetMaxBodyCount() int64 {
 	if x != nil {
 		return x.MaxBodyCount
 	}
@@ -243,7 +243,7 @@ type ListOpenChannelsResponse struct {
 	// Number of bodies up to which the list is complete. It is less than asked for
 	// where the bound on the work was met: 30 million sets of particles looked at,
 	// or 200,000 channels of one number of bodies. 0: not even the least.
-	CompleteBodyCount int32 `protobuf:"varint,4,opt,name=complete_body_count,json=completeBodyCount,proto3" json:"complete_body_count,omitempty"`
+	CompleteBodyCount int64 `protobuf:"varint,4,opt,name=complete_body_count,json=completeBodyCount,proto3" json:"complete_body_count,omitempty"`
 	// complete_body_count is as much as was asked for.
 	Complete bool `protobuf:"varint,5,opt,name=complete,proto3" json:"complete,omitempty"`
 	// The closed channel that opens next, of up to complete_body_count bodies;
@@ -312,7 +312,7 @@ func (x *ListOpenChannelsResponse) GetChannelCount() int64 {
 	return 0
 }
 
-func (x *ListOpenChannelsResponse) GetCompleteBodyCount() int32 {
+func (x *ListOpenChannelsResponse) GetCompleteBodyCount() int64 {
 	if x != nil {
 		return x.CompleteBodyCount
 	}
@@ -445,8 +445,8 @@ const file_kinegate_v1_channels_proto_rawDesc = "" +
 	"\x11initial_particles\x18\x01 \x03(\tR\x10initialParticles\x12>\n" +
 	"\rinitial_state\x18\x02 \x01(\v2\x19.kinegate.v1.InitialStateR\finitialState\x12\x1a\n" +
 	"\bproducts\x18\x03 \x03(\tR\bproducts\x12$\n" +
-	"\x0emin_body_count\x18\x04 \x01(\x05R\fminBodyCount\x12$\n" +
-	"\x0emax_body_count\x18\x05 \x01(\x05R\fmaxBodyCount\x12?\n" +
+	"\x0emin_body_count\x18\x04 \x01(\x03R\fminBodyCount\x12$\n" +
+	"\x0emax_body_count\x18\x05 \x01(\x03R\fmaxBodyCount\x12?\n" +
 	"\fignored_laws\x18\x06 \x03(\x0e2\x1c.kinegate.v1.ConservationLawR\vignoredLaws\x12'\n" +
 	"\x10with_spin_c_bose\x18\a \x01(\bR\rwithSpinCBose\x12\x1b\n" +
 	"\tpage_size\x18\b \x01(\x05R\bpageSize\x12\x1d\n" +
@@ -456,7 +456,7 @@ const file_kinegate_v1_channels_proto_rawDesc = "" +
 	"\bchannels\x18\x01 \x03(\v2\x18.kinegate.v1.OpenChannelR\bchannels\x12&\n" +
 	"\x0fnext_page_token\x18\x02 \x01(\tR\rnextPageToken\x12#\n" +
 	"\rchannel_count\x18\x03 \x01(\x03R\fchannelCount\x12.\n" +
-	"\x13complete_body_count\x18\x04 \x01(\x05R\x11completeBodyCount\x12\x1a\n" +
+	"\x13complete_body_count\x18\x04 \x01(\x03R\x11completeBodyCount\x12\x1a\n" +
 	"\bcomplete\x18\x05 \x01(\bR\bcomplete\x12:\n" +
 	"\fnext_to_open\x18\x06 \x01(\v2\x18.kinegate.v1.OpenChannelR\n" +
 	"nextToOpen\x12?\n" +

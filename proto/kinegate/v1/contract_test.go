@@ -28,7 +28,7 @@ var withoutUnit = map[string]string{
 	"AnnihilationAnswer.beta":                       "speed over the speed of light",
 	"AzimuthTable.densities":                        "densities in any unit",
 	"BackscatterAngle.fraction_within":              "a share of the photons",
-	"BackscatterAnswer.invariant":                   "s over the square of the mass, minus 1",
+	"BackscatterAnswer.relative_excess":             "s over the square of the mass, minus 1",
 	"BackscatterAnswer.window_fractions":            "shares of the photons",
 	"BackscatterPoint.circular_degree":              "degree in [-1, 1]",
 	"BackscatterPoint.linear_degree":                "degree in [0, 1]",
@@ -71,7 +71,6 @@ var withoutUnit = map[string]string{
 	"EnergyTable.rates":                             "rates in any unit",
 	"EntryColumns.assignment_offsets":               "int32 rows",
 	"EntryColumns.assignments":                      "int16 objects of the event",
-	"EntryColumns.assignments_tried":                "int32 counts",
 	"EntryColumns.beam_rows":                        "int16 rows",
 	"EntryColumns.hypothesis_indices":               "int16 positions in the selection",
 	"AssignmentExplanation.rank_distance":           "squares of distances over their scales",
@@ -88,8 +87,7 @@ var withoutUnit = map[string]string{
 	"EventBlock.object_classes":                     "uint8 classes",
 	"EventBlock.object_offsets":                     "int32 rows",
 	"FitColumns.chi_squares":                        "float64 chi-squares",
-	"FitColumns.degrees_of_freedom":                 "int16 counts",
-	"FitColumns.iterations":                         "int16 counts",
+	"FitColumns.degrees_of_freedom":                 "int16 numbers",
 	"FitColumns.probabilities":                      "float64 probabilities",
 	"FitColumns.statuses":                           "uint8 statuses",
 	"FitExplanation.chi_square":                     "a chi-square",
@@ -248,7 +246,12 @@ func (c *contract) field(field protoreflect.FieldDescriptor) []string {
 	add := func(text string) { faults = append(faults, key+" "+text) }
 
 	switch field.Kind() {
-	case protoreflect.DoubleKind, protoreflect.BytesKind:
+	case protoreflect.BytesKind:
+		// A column of counts says so, like a single one.
+		if !hasUnit && !strings.HasSuffix(name, "_counts") && !c.listed(c.withoutUnit, key) {
+			add("ends in no unit and stands in no list")
+		}
+	case protoreflect.DoubleKind:
 		if !hasUnit && !c.listed(c.withoutUnit, key) {
 			add("ends in no unit and stands in no list")
 		}
@@ -259,6 +262,10 @@ func (c *contract) field(field protoreflect.FieldDescriptor) []string {
 	case protoreflect.Int32Kind, protoreflect.Int64Kind:
 		if !field.IsList() && countName.MatchString(name) && !hasUnit && !c.listed(c.wholeNumbers, key) {
 			add("is a count and does not end in _count")
+		}
+
+		if strings.HasSuffix(name, "_count") && field.Kind() != protoreflect.Int64Kind {
+			add("is a count of 32 bits")
 		}
 	case protoreflect.BoolKind, protoreflect.EnumKind, protoreflect.StringKind, protoreflect.MessageKind,
 		protoreflect.GroupKind, protoreflect.Sint32Kind, protoreflect.Sint64Kind, protoreflect.Sfixed32Kind,
@@ -396,12 +403,12 @@ func TestContractNamesSeeOffences(t *testing.T) {
 	bad := []string{
 		"single double mass", "single double energy_mev", "single bytes momentum", "single float width_gev",
 		"single uint32 row", "single uint64 id", "single fixed32 word", "single int64 events", "single int32 num_events",
-		"single int32 n_photons", "repeated double length_m", "repeated string product",
+		"single int32 n_photons", "single int32 draw_count", "single bytes tries", "repeated double length_m", "repeated string product",
 		"single string pair_4momentum", "single string from", "single bool not", "single string inline",
 	}
 
 	good := []string{
-		"single double mass_gev", "single bytes momentum_gev", "single double share", "single int64 event_count",
+		"single double mass_gev", "single bytes momentum_gev", "single bytes try_counts", "single double share", "single int64 event_count",
 		"single int32 charge_thirds", "repeated double energies_gev", "repeated string products", "repeated string all_of",
 		"single int64 sequence", "single int64 budget_ns", "single string energy4", "single bool is_open",
 	}

@@ -582,7 +582,7 @@ type Tracker struct {
 	// Acceptance, of true directions.
 	Theta *PolarRange `protobuf:"bytes,1,opt,name=theta,proto3" json:"theta,omitempty"`
 	// Lowest true momentum of a track, at least 0.
-	MomentumMinGev float64 `protobuf:"fixed64,2,opt,name=momentum_min_gev,json=momentumMinGev,proto3" json:"momentum_min_gev,omitempty"`
+	MinMomentumGev float64 `protobuf:"fixed64,2,opt,name=min_momentum_gev,json=minMomentumGev,proto3" json:"min_momentum_gev,omitempty"`
 	// a of the momentum resolution (sigma_p/p)^2 = a^2 + (b p)^2, at least 0. a and b are
 	// not both 0.
 	Constant float64 `protobuf:"fixed64,3,opt,name=constant,proto3" json:"constant,omitempty"`
@@ -637,9 +637,9 @@ func (x *Tracker) GetTheta() *PolarRange {
 	return nil
 }
 
-func (x *Tracker) GetMomentumMinGev() float64 {
+func (x *Tracker) GetMinMomentumGev() float64 {
 	if x != nil {
-		return x.MomentumMinGev
+		return x.MinMomentumGev
 	}
 	return 0
 }
@@ -756,7 +756,7 @@ type DirectionDetector struct {
 	// Acceptance, of true directions.
 	Theta *PolarRange `protobuf:"bytes,1,opt,name=theta,proto3" json:"theta,omitempty"`
 	// Lowest true momentum, at least 0.
-	MomentumMinGev float64 `protobuf:"fixed64,2,opt,name=momentum_min_gev,json=momentumMinGev,proto3" json:"momentum_min_gev,omitempty"`
+	MinMomentumGev float64 `protobuf:"fixed64,2,opt,name=min_momentum_gev,json=minMomentumGev,proto3" json:"min_momentum_gev,omitempty"`
 	// Resolution in theta and in phi times sin(theta), above 0 and at most 1.
 	AngleSigmaRad float64 `protobuf:"fixed64,3,opt,name=angle_sigma_rad,json=angleSigmaRad,proto3" json:"angle_sigma_rad,omitempty"`
 	// Probability to find it. Absent means 1.
@@ -802,9 +802,9 @@ func (x *DirectionDetector) GetTheta() *PolarRange {
 	return nil
 }
 
-func (x *DirectionDetector) GetMomentumMinGev() float64 {
+func (x *DirectionDetector) GetMinMomentumGev() float64 {
 	if x != nil {
-		return x.MomentumMinGev
+		return x.MinMomentumGev
 	}
 	return 0
 }
@@ -961,7 +961,7 @@ func (x *VertexDetector) GetSigmaZM() float64 {
 type DisplacedVertexDetector struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
 	// Lowest true distance of the point from the interaction point, at least 0.
-	DistanceMinM float64 `protobuf:"fixed64,1,opt,name=distance_min_m,json=distanceMinM,proto3" json:"distance_min_m,omitempty"`
+	MinDistanceM float64 `protobuf:"fixed64,1,opt,name=min_distance_m,json=minDistanceM,proto3" json:"min_distance_m,omitempty"`
 	// Standard deviation along x, above 0 and at most 1.
 	SigmaXM float64 `protobuf:"fixed64,2,opt,name=sigma_x_m,json=sigmaXM,proto3" json:"sigma_x_m,omitempty"`
 	// Standard deviation along y, above 0 and at most 1.
@@ -1004,9 +1004,9 @@ func (*DisplacedVertexDetector) Descriptor() ([]byte, []int) {
 	return file_kinegate_v1_detector_proto_rawDescGZIP(), []int{10}
 }
 
-func (x *DisplacedVertexDetector) GetDistanceMinM() float64 {
+func (x *DisplacedVertexDetector) GetMinDistanceM() float64 {
 	if x != nil {
-		return x.DistanceMinM
+		return x.MinDistanceM
 	}
 	return 0
 }
@@ -1092,7 +1092,7 @@ const file_kinegate_v1_detector_proto_rawDesc = "" +
 	"\bmean_gev\x18\x02 \x01(\x01R\ameanGev\"\xce\x02\n" +
 	"\aTracker\x12-\n" +
 	"\x05theta\x18\x01 \x01(\v2\x17.kinegate.v1.PolarRangeR\x05theta\x12(\n" +
-	"\x10momentum_min_gev\x18\x02 \x01(\x01R\x0emomentumMinGev\x12\x1a\n" +
+	"\x10min_momentum_gev\x18\x02 \x01(\x01R\x0eminMomentumGev\x12\x1a\n" +
 	"\bconstant\x18\x03 \x01(\x01R\bconstant\x12\x17\n" +
 	"\aper_gev\x18\x04 \x01(\x01R\x06perGev\x12&\n" +
 	"\x0fangle_sigma_rad\x18\x05 \x01(\x01R\rangleSigmaRad\x12#\n" +
@@ -1110,7 +1110,7 @@ const file_kinegate_v1_detector_proto_rawDesc = "" +
 	"\vprobability\x18\x03 \x01(\x01R\vprobability\"\xc8\x01\n" +
 	"\x11DirectionDetector\x12-\n" +
 	"\x05theta\x18\x01 \x01(\v2\x17.kinegate.v1.PolarRangeR\x05theta\x12(\n" +
-	"\x10momentum_min_gev\x18\x02 \x01(\x01R\x0emomentumMinGev\x12&\n" +
+	"\x10min_momentum_gev\x18\x02 \x01(\x01R\x0eminMomentumGev\x12&\n" +
 	"\x0fangle_sigma_rad\x18\x03 \x01(\x01R\rangleSigmaRad\x12#\n" +
 	"\n" +
 	"efficiency\x18\x04 \x01(\x01H\x00R\n" +
@@ -1125,7 +1125,7 @@ const file_kinegate_v1_detector_proto_rawDesc = "" +
 	"\tsigma_y_m\x18\x02 \x01(\x01R\asigmaYM\x12\x1a\n" +
 	"\tsigma_z_m\x18\x03 \x01(\x01R\asigmaZM\"\xc7\x01\n" +
 	"\x17DisplacedVertexDetector\x12$\n" +
-	"\x0edistance_min_m\x18\x01 \x01(\x01R\fdistanceMinM\x12\x1a\n" +
+	"\x0emin_distance_m\x18\x01 \x01(\x01R\fminDistanceM\x12\x1a\n" +
 	"\tsigma_x_m\x18\x02 \x01(\x01R\asigmaXM\x12\x1a\n" +
 	"\tsigma_y_m\x18\x03 \x01(\x01R\asigmaYM\x12\x1a\n" +
 	"\tsigma_z_m\x18\x04 \x01(\x01R\asigmaZM\x12#\n" +

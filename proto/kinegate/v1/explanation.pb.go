@@ -486,7 +486,7 @@ type FitExplanation struct {
 	// degree of freedom.
 	Probability *float64 `protobuf:"fixed64,3,opt,name=probability,proto3,oneof" json:"probability,omitempty"`
 	// Number of steps.
-	IterationCount int32 `protobuf:"varint,4,opt,name=iteration_count,json=iterationCount,proto3" json:"iteration_count,omitempty"`
+	IterationCount int64 `protobuf:"varint,4,opt,name=iteration_count,json=iterationCount,proto3" json:"iteration_count,omitempty"`
 	// The constraints.
 	Constraints []*ConstraintExplanation `protobuf:"bytes,5,rep,name=constraints,proto3" json:"constraints,omitempty"`
 	// The particles: initial ones first, then the products.
@@ -550,7 +550,7 @@ func (x *FitExplanation) GetProbability() float64 {
 	return 0
 }
 
-func (x *FitExplanation) GetIterationCount() int32 {
+func (x *FitExplanation) GetIterationCount() int64 {
 	if x != nil {
 		return x.IterationCount
 	}
@@ -895,7 +895,7 @@ const file_kinegate_v1_explanation_proto_rawDesc = "" +
 	"\n" +
 	"chi_square\x18\x02 \x01(\x01R\tchiSquare\x12%\n" +
 	"\vprobability\x18\x03 \x01(\x01H\x00R\vprobability\x88\x01\x01\x12'\n" +
-	"\x0fiteration_count\x18\x04 \x01(\x05R\x0eiterationCount\x12D\n" +
+	"\x0fiteration_count\x18\x04 \x01(\x03R\x0eiterationCount\x12D\n" +
 	"\vconstraints\x18\x05 \x03(\v2\".kinegate.v1.ConstraintExplanationR\vconstraints\x129\n" +
 	"\tparticles\x18\x06 \x03(\v2\x1b.kinegate.v1.FittedParticleR\tparticles\x12!\n" +
 	"\n" +

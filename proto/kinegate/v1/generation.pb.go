@@ -1115,9 +1115,9 @@ type LineShape struct {
 	ConstantWidth bool `protobuf:"varint,3,opt,name=constant_width,json=constantWidth,proto3" json:"constant_width,omitempty"`
 	// Lowest mass; 0 means 25 widths below the nominal one. The lightest stated final
 	// state limits it in any case.
-	LowGev float64 `protobuf:"fixed64,4,opt,name=low_gev,json=lowGev,proto3" json:"low_gev,omitempty"`
+	MinGev float64 `protobuf:"fixed64,4,opt,name=min_gev,json=minGev,proto3" json:"min_gev,omitempty"`
 	// Highest mass; 0 means 25 widths above the nominal one.
-	HighGev       float64 `protobuf:"fixed64,5,opt,name=high_gev,json=highGev,proto3" json:"high_gev,omitempty"`
+	MaxGev        float64 `protobuf:"fixed64,5,opt,name=max_gev,json=maxGev,proto3" json:"max_gev,omitempty"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
 }
@@ -1173,16 +1173,16 @@ func (x *LineShape) GetConstantWidth() bool {
 	return false
 }
 
-func (x *LineShape) GetLowGev() float64 {
+func (x *LineShape) GetMinGev() float64 {
 	if x != nil {
-		return x.LowGev
+		return x.MinGev
 	}
 	return 0
 }
 
-func (x *LineShape) GetHighGev() float64 {
+func (x *LineShape) GetMaxGev() float64 {
 	if x != nil {
-		return x.HighGev
+		return x.MaxGev
 	}
 	return 0
 }
@@ -2589,13 +2589,13 @@ const file_kinegate_v1_generation_proto_rawDesc = "" +
 	"beta_decay\x18\a \x01(\v2\x16.kinegate.v1.BetaDecayH\x00R\tbetaDecay\x120\n" +
 	"\x06cosine\x18\b \x01(\v2\x18.kinegate.v1.CosineTableR\x06cosineB\t\n" +
 	"\adensityB\x15\n" +
-	"\x13_branching_fraction\"\xd1\x01\n" +
+	"\x13_branching_fraction\"\xcf\x01\n" +
 	"\tLineShape\x12.\n" +
 	"\x10angular_momentum\x18\x01 \x01(\x05H\x00R\x0fangularMomentum\x88\x01\x01\x12$\n" +
 	"\x0eradius_per_gev\x18\x02 \x01(\x01R\fradiusPerGev\x12%\n" +
 	"\x0econstant_width\x18\x03 \x01(\bR\rconstantWidth\x12\x17\n" +
-	"\alow_gev\x18\x04 \x01(\x01R\x06lowGev\x12\x19\n" +
-	"\bhigh_gev\x18\x05 \x01(\x01R\ahighGevB\x13\n" +
+	"\amin_gev\x18\x04 \x01(\x01R\x06minGev\x12\x17\n" +
+	"\amax_gev\x18\x05 \x01(\x01R\x06maxGevB\x13\n" +
 	"\x11_angular_momentum\"A\n" +
 	"\x10DalitzPolynomial\x12-\n" +
 	"\x05terms\x18\x01 \x03(\v2\x17.kinegate.v1.DalitzTermR\x05terms\"`\n" +

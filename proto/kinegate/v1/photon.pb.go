@@ -1405,11 +1405,11 @@ type LaserBackscatter struct {
 	// Polarisation of beam and light, head on only. Absent: no polarisation is wanted.
 	Polarisation *BackscatterPolarisation `protobuf:"bytes,5,opt,name=polarisation,proto3" json:"polarisation,omitempty"`
 	// Energies of the scattered photon at which the spectrum is wanted, each between
-	// lowest_gev and highest_gev of the answer.
+	// min_gev and max_gev of the answer.
 	EnergiesGev []float64 `protobuf:"fixed64,6,rep,packed,name=energies_gev,json=energiesGev,proto3" json:"energies_gev,omitempty"`
 	// The spectrum is wanted, before these, at this many energies from the lowest to
 	// the highest in equal steps: 0, or 2 to 10,000.
-	EvenEnergyCount int32 `protobuf:"varint,7,opt,name=even_energy_count,json=evenEnergyCount,proto3" json:"even_energy_count,omitempty"`
+	EvenEnergyCount int64 `protobuf:"varint,7,opt,name=even_energy_count,json=evenEnergyCount,proto3" json:"even_energy_count,omitempty"`
 	// Angles from the total momentum at which the energy is wanted, and the fraction of
 	// photons inside, as a collimator passes them; each within [0, pi].
 	AnglesRad []float64 `protobuf:"fixed64,8,rep,packed,name=angles_rad,json=anglesRad,proto3" json:"angles_rad,omitempty"`
@@ -1491,7 +1491,7 @@ func (x *LaserBackscatter) GetEnergiesGev() []float64 {
 	return nil
 }
 
-func (x *LaserBackscatter) GetEvenEnergyCount() int32 {
+func (x *LaserBackscatter) GetEvenEnergyCount() int64 {
 	if x != nil {
 		return x.EvenEnergyCount
 	}
@@ -1588,11 +1588,11 @@ type BackscatterAnswer struct {
 	// Total energy of a lepton of the beam.
 	BeamEnergyGev float64 `protobuf:"fixed64,3,opt,name=beam_energy_gev,json=beamEnergyGev,proto3" json:"beam_energy_gev,omitempty"`
 	// s over the square of the mass, minus 1.
-	Invariant float64 `protobuf:"fixed64,4,opt,name=invariant,proto3" json:"invariant,omitempty"`
+	RelativeExcess float64 `protobuf:"fixed64,4,opt,name=relative_excess,json=relativeExcess,proto3" json:"relative_excess,omitempty"`
 	// Smallest energy of a scattered photon.
-	LowestGev float64 `protobuf:"fixed64,5,opt,name=lowest_gev,json=lowestGev,proto3" json:"lowest_gev,omitempty"`
+	MinGev float64 `protobuf:"fixed64,5,opt,name=min_gev,json=minGev,proto3" json:"min_gev,omitempty"`
 	// Largest energy of a scattered photon: the edge.
-	HighestGev float64 `protobuf:"fixed64,6,opt,name=highest_gev,json=highestGev,proto3" json:"highest_gev,omitempty"`
+	MaxGev float64 `protobuf:"fixed64,6,opt,name=max_gev,json=maxGev,proto3" json:"max_gev,omitempty"`
 	// Mean energy of the scattered photons.
 	MeanGev float64 `protobuf:"fixed64,7,opt,name=mean_gev,json=meanGev,proto3" json:"mean_gev,omitempty"`
 	// Total cross-section.
@@ -1658,23 +1658,23 @@ func (x *BackscatterAnswer) GetBeamEnergyGev() float64 {
 	return 0
 }
 
-func (x *BackscatterAnswer) GetInvariant() float64 {
+func (x *BackscatterAnswer) GetRelativeExcess() float64 {
 	if x != nil {
-		return x.Invariant
+		return x.RelativeExcess
 	}
 	return 0
 }
 
-func (x *BackscatterAnswer) GetLowestGev() float64 {
+func (x *BackscatterAnswer) GetMinGev() float64 {
 	if x != nil {
-		return x.LowestGev
+		return x.MinGev
 	}
 	return 0
 }
 
-func (x *BackscatterAnswer) GetHighestGev() float64 {
+func (x *BackscatterAnswer) GetMaxGev() float64 {
 	if x != nil {
-		return x.HighestGev
+		return x.MaxGev
 	}
 	return 0
 }
@@ -2517,7 +2517,7 @@ const file_kinegate_v1_photon_proto_rawDesc = "" +
 	"\x17angle_between_beams_rad\x18\x04 \x01(\x01H\x00R\x14angleBetweenBeamsRad\x88\x01\x01\x12H\n" +
 	"\fpolarisation\x18\x05 \x01(\v2$.kinegate.v1.BackscatterPolarisationR\fpolarisation\x12!\n" +
 	"\fenergies_gev\x18\x06 \x03(\x01R\venergiesGev\x12*\n" +
-	"\x11even_energy_count\x18\a \x01(\x05R\x0fevenEnergyCount\x12\x1d\n" +
+	"\x11even_energy_count\x18\a \x01(\x03R\x0fevenEnergyCount\x12\x1d\n" +
 	"\n" +
 	"angles_rad\x18\b \x03(\x01R\tanglesRad\x122\n" +
 	"\awindows\x18\t \x03(\v2\x18.kinegate.v1.EnergyRangeR\awindowsB\x1a\n" +
@@ -2526,16 +2526,14 @@ const file_kinegate_v1_photon_proto_rawDesc = "" +
 	"\x0fcircular_degree\x18\x01 \x01(\x01R\x0ecircularDegree\x12#\n" +
 	"\rlinear_degree\x18\x02 \x01(\x01R\flinearDegree\x12\x1f\n" +
 	"\vbeam_degree\x18\x03 \x01(\x01R\n" +
-	"beamDegree\"\xa3\x03\n" +
+	"beamDegree\"\xa0\x03\n" +
 	"\x11BackscatterAnswer\x12\x1a\n" +
 	"\bparticle\x18\x01 \x01(\tR\bparticle\x12\x19\n" +
 	"\bmass_gev\x18\x02 \x01(\x01R\amassGev\x12&\n" +
-	"\x0fbeam_energy_gev\x18\x03 \x01(\x01R\rbeamEnergyGev\x12\x1c\n" +
-	"\tinvariant\x18\x04 \x01(\x01R\tinvariant\x12\x1d\n" +
-	"\n" +
-	"lowest_gev\x18\x05 \x01(\x01R\tlowestGev\x12\x1f\n" +
-	"\vhighest_gev\x18\x06 \x01(\x01R\n" +
-	"highestGev\x12\x19\n" +
+	"\x0fbeam_energy_gev\x18\x03 \x01(\x01R\rbeamEnergyGev\x12'\n" +
+	"\x0frelative_excess\x18\x04 \x01(\x01R\x0erelativeExcess\x12\x17\n" +
+	"\amin_gev\x18\x05 \x01(\x01R\x06minGev\x12\x17\n" +
+	"\amax_gev\x18\x06 \x01(\x01R\x06maxGev\x12\x19\n" +
 	"\bmean_gev\x18\a \x01(\x01R\ameanGev\x12\x1d\n" +
 	"\n" +
 	"total_barn\x18\b \x01(\x01R\ttotalBarn\x125\n" +

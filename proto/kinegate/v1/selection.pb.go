@@ -1081,7 +1081,7 @@ func (*AnyExtraObjects) Descriptor() ([]byte, []int) {
 type SoftPhotons struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
 	// Most photons.
-	MaxCount int32 `protobuf:"varint,1,opt,name=max_count,json=maxCount,proto3" json:"max_count,omitempty"`
+	MaxCount int64 `protobuf:"varint,1,opt,name=max_count,json=maxCount,proto3" json:"max_count,omitempty"`
 	// Every one of them must be below this energy.
 	MaxEnergyGev  float64 `protobuf:"fixed64,2,opt,name=max_energy_gev,json=maxEnergyGev,proto3" json:"max_energy_gev,omitempty"`
 	unknownFields protoimpl.UnknownFields
@@ -1118,7 +1118,7 @@ func (*SoftPhotons) Descriptor() ([]byte, []int) {
 	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{11}
 }
 
-func (x *SoftPhotons) GetMaxCount() int32 {
+func (x *SoftPhotons) GetMaxCount() int64 {
 	if x != nil {
 		return x.MaxCount
 	}
@@ -3127,7 +3127,7 @@ type ExplainVerdictRequest struct {
 	// Position of that event in the block, from 0.
 	EventIndex int32 `protobuf:"varint,3,opt,name=event_index,json=eventIndex,proto3" json:"event_index,omitempty"`
 	// Most assignments to list for a hypothesis, at most 1,000; 0 means 100.
-	MaxAssignmentCount int32 `protobuf:"varint,4,opt,name=max_assignment_count,json=maxAssignmentCount,proto3" json:"max_assignment_count,omitempty"`
+	MaxAssignmentCount int64 `protobuf:"varint,4,opt,name=max_assignment_count,json=maxAssignmentCount,proto3" json:"max_assignment_count,omitempty"`
 	unknownFields      protoimpl.UnknownFields
 	sizeCache          protoimpl.SizeCache
 }
@@ -3183,7 +3183,7 @@ func (x *ExplainVerdictRequest) GetEventIndex() int32 {
 	return 0
 }
 
-func (x *ExplainVerdictRequest) GetMaxAssignmentCount() int32 {
+func (x *ExplainVerdictRequest) GetMaxAssignmentCount() int64 {
 	if x != nil {
 		return x.MaxAssignmentCount
 	}
@@ -3970,7 +3970,7 @@ const file_kinegate_v1_selection_proto_rawDesc = "" +
 	"\x0eNoExtraObjects\"\x11\n" +
 	"\x0fAnyExtraObjects\"P\n" +
 	"\vSoftPhotons\x12\x1b\n" +
-	"\tmax_count\x18\x01 \x01(\x05R\bmaxCount\x12$\n" +
+	"\tmax_count\x18\x01 \x01(\x03R\bmaxCount\x12$\n" +
 	"\x0emax_energy_gev\x18\x02 \x01(\x01R\fmaxEnergyGev\"\xc7\x01\n" +
 	"\tCondition\x12+\n" +
 	"\x06window\x18\x01 \x01(\v2\x13.kinegate.v1.WindowR\x06window\x12-\n" +
@@ -4148,7 +4148,7 @@ const file_kinegate_v1_selection_proto_rawDesc = "" +
 	"\x05block\x18\x02 \x01(\v2\x17.kinegate.v1.EventBlockR\x05block\x12\x1f\n" +
 	"\vevent_index\x18\x03 \x01(\x05R\n" +
 	"eventIndex\x120\n" +
-	"\x14max_assignment_count\x18\x04 \x01(\x05R\x12maxAssignmentCount\"\x84\x01\n" +
+	"\x14max_assignment_count\x18\x04 \x01(\x03R\x12maxAssignmentCount\"\x84\x01\n" +
 	"\x0fSelectionSource\x12.\n" +
 	"\x05given\x18\x01 \x01(\v2\x16.kinegate.v1.SelectionH\x00R\x05given\x127\n" +
 	"\x05named\x18\x02 \x01(\v2\x1f.kinegate.v1.SelectionReferenceH\x00R\x05namedB\b\n" +

@@ -184,7 +184,7 @@ type VerdictBlock struct {
 	// Digest of the selection that judged the block, in hexadecimal.
 	SelectionDigest string `protobuf:"bytes,3,opt,name=selection_digest,json=selectionDigest,proto3" json:"selection_digest,omitempty"`
 	// Number of events.
-	EventCount int32 `protobuf:"varint,4,opt,name=event_count,json=eventCount,proto3" json:"event_count,omitempty"`
+	EventCount int64 `protobuf:"varint,4,opt,name=event_count,json=eventCount,proto3" json:"event_count,omitempty"`
 	// Status of each event, uint8, values of EventStatus.
 	Statuses []byte `protobuf:"bytes,5,opt,name=statuses,proto3" json:"statuses,omitempty"`
 	// The gate: one bit per event, least significant bit first, after prescale,
@@ -255,7 +255,7 @@ func (x *VerdictBlock) GetSelectionDigest() string {
 	return ""
 }
 
-func (x *VerdictBlock) GetEventCount() int32 {
+func (x *VerdictBlock) GetEventCount() int64 {
 	if x != nil {
 		return x.EventCount
 	}
@@ -474,7 +474,7 @@ type EntryColumns struct {
 	// Number of assignments tried for the hypothesis of the entry, int32: complete
 	// ones once, however many beam candidates there are, and those that a window
 	// ended.
-	AssignmentsTried []byte `protobuf:"bytes,6,opt,name=assignments_tried,json=assignmentsTried,proto3" json:"assignments_tried,omitempty"`
+	AssignmentCounts []byte `protobuf:"bytes,6,opt,name=assignment_counts,json=assignmentCounts,proto3" json:"assignment_counts,omitempty"`
 	// First assignment element of each entry and the total at the end, int32.
 	AssignmentOffsets []byte `protobuf:"bytes,7,opt,name=assignment_offsets,json=assignmentOffsets,proto3" json:"assignment_offsets,omitempty"`
 	// Object index within the event of each product in depth-first order,
@@ -561,9 +561,9 @@ func (x *EntryColumns) GetStatuses() []byte {
 	return nil
 }
 
-func (x *EntryColumns) GetAssignmentsTried() []byte {
+func (x *EntryColumns) GetAssignmentCounts() []byte {
 	if x != nil {
-		return x.AssignmentsTried
+		return x.AssignmentCounts
 	}
 	return nil
 }
@@ -624,9 +624,9 @@ type FitColumns struct {
 	// with a degree of freedom.
 	Probabilities []byte `protobuf:"bytes,4,opt,name=probabilities,proto3" json:"probabilities,omitempty"`
 	// Number of steps, int16; 0 without a fit.
-	Iterations    []byte `protobuf:"bytes,5,opt,name=iterations,proto3" json:"iterations,omitempty"`
-	unknownFields protoimpl.UnknownFields
-	sizeCache     protoimpl.SizeCache
+	IterationCounts []byte `protobuf:"bytes,5,opt,name=iteration_counts,json=iterationCounts,proto3" json:"iteration_counts,omitempty"`
+	unknownFields   protoimpl.UnknownFields
+	sizeCache       protoimpl.SizeCache
 }
 
 func (x *FitColumns) Reset() {
@@ -687,9 +687,9 @@ func (x *FitColumns) GetProbabilities() []byte {
 	return nil
 }
 
-func (x *FitColumns) GetIterations() []byte {
+func (x *FitColumns) GetIterationCounts() []byte {
 	if x != nil {
-		return x.Iterations
+		return x.IterationCounts
 	}
 	return nil
 }
@@ -703,7 +703,7 @@ const file_kinegate_v1_verdict_proto_rawDesc = "" +
 	"\bsequence\x18\x01 \x01(\x03R\bsequence\x122\n" +
 	"\brejected\x18\x02 \x01(\v2\x16.kinegate.v1.RejectionR\brejected\x12)\n" +
 	"\x10selection_digest\x18\x03 \x01(\tR\x0fselectionDigest\x12\x1f\n" +
-	"\vevent_count\x18\x04 \x01(\x05R\n" +
+	"\vevent_count\x18\x04 \x01(\x03R\n" +
 	"eventCount\x12\x1a\n" +
 	"\bstatuses\x18\x05 \x01(\fR\bstatuses\x12\x12\n" +
 	"\x04gate\x18\x06 \x01(\fR\x04gate\x12;\n" +
@@ -726,7 +726,7 @@ const file_kinegate_v1_verdict_proto_rawDesc = "" +
 	"\tbeam_rows\x18\x03 \x01(\fR\bbeamRows\x12\x18\n" +
 	"\aweights\x18\x04 \x01(\fR\aweights\x12\x1a\n" +
 	"\bstatuses\x18\x05 \x01(\fR\bstatuses\x12+\n" +
-	"\x11assignments_tried\x18\x06 \x01(\fR\x10assignmentsTried\x12-\n" +
+	"\x11assignment_counts\x18\x06 \x01(\fR\x10assignmentCounts\x12-\n" +
 	"\x12assignment_offsets\x18\a \x01(\fR\x11assignmentOffsets\x12 \n" +
 	"\vassignments\x18\b \x01(\fR\vassignments\x12-\n" +
 	"\x12observable_offsets\x18\t \x01(\fR\x11observableOffsets\x12 \n" +
@@ -734,17 +734,15 @@ const file_kinegate_v1_verdict_proto_rawDesc = "" +
 	" \x01(\fR\vobservables\x12>\n" +
 	"\x18observable_uncertainties\x18\v \x01(\fH\x00R\x17observableUncertainties\x88\x01\x01\x12+\n" +
 	"\x04fits\x18\f \x01(\v2\x17.kinegate.v1.FitColumnsR\x04fitsB\x1b\n" +
-	"\x19_observable_uncertainties\"\xbd\x01\n" +
+	"\x19_observable_uncertainties\"\xc8\x01\n" +
 	"\n" +
 	"FitColumns\x12\x1a\n" +
 	"\bstatuses\x18\x01 \x01(\fR\bstatuses\x12\x1f\n" +
 	"\vchi_squares\x18\x02 \x01(\fR\n" +
 	"chiSquares\x12,\n" +
 	"\x12degrees_of_freedom\x18\x03 \x01(\fR\x10degreesOfFreedom\x12$\n" +
-	"\rprobabilities\x18\x04 \x01(\fR\rprobabilities\x12\x1e\n" +
-	"\n" +
-	"iterations\x18\x05 \x01(\fR\n" +
-	"iterations*\x98\x02\n" +
+	"\rprobabilities\x18\x04 \x01(\fR\rprobabilities\x12)\n" +
+	"\x10iteration_counts\x18\x05 \x01(\fR\x0fiterationCounts*\x98\x02\n" +
 	"\vEventStatus\x12\x1c\n" +
 	"\x18EVENT_STATUS_UNSPECIFIED\x10\x00\x12\x17\n" +
 	"\x13EVENT_STATUS_JUDGED\x10\x01\x12\x1b\n" +

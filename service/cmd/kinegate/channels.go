@@ -14,7 +14,7 @@ import (
 
 // channelsFlags say which channels are wanted.
 type channelsFlags struct {
-	bodies, leastBodies int32
+	bodies, leastBodies int64
 	products            []string
 	ignored             []string
 	rules               bool
@@ -59,8 +59,8 @@ func channelsCommand(p program) *cobra.Command {
 	initial.add(c)
 	picture.flag(c)
 	f := c.Flags()
-	f.Int32Var(&flags.bodies, "bodies", 2, "largest number of bodies, 1 to 5")
-	f.Int32Var(&flags.leastBodies, "least-bodies", 0, "least number of bodies, 1 to 5; 2 or --bodies if not given")
+	f.Int64Var(&flags.bodies, "bodies", 2, "largest number of bodies, 1 to 5")
+	f.Int64Var(&flags.leastBodies, "least-bodies", 0, "least number of bodies, 1 to 5; 2 or --bodies if not given")
 	f.StringSliceVar(&flags.products, "products", nil, `particles of which channels are made, such as "p n pi+ pi-"`)
 	f.StringSliceVar(&flags.ignored, "ignore", nil, "laws that are not applied, such as strangeness or charm")
 	f.BoolVar(&flags.rules, "spin-rules", false, "also apply what spin, C and Bose symmetry forbid; two real photons make no spin 1")

@@ -317,6 +317,6 @@ func (g *generateRun) spectrum() (*kinegatev1.BeamSpectrum, error) {
 	}
 	electron, err := energy("--bremsstrahlung", g.electrons)
 	return &kinegatev1.BeamSpectrum{Kind: &kinegatev1.BeamSpectrum_Bremsstrahlung{Bremsstrahlung: &kinegatev1.BremsstrahlungSpectrum{
-		ElectronGev: electron, LowGev: ends[0], HighGev: ends[1], CompleteScreening: true,
+		ElectronGev: electron, MinGev: ends[0], MaxGev: ends[1], CompleteScreening: true,
 	}}}, err
 }

@@ -34,7 +34,7 @@ const generationText = `name: two
 seed: 5
 initial_state:
   beam_on_target:
-    beam: {bremsstrahlung: {electron_gev: 3, low_gev: 1.2, high_gev: 2.4, complete_screening: true, channel_count: 24}}
+    beam: {bremsstrahlung: {electron_gev: 3, min_gev: 1.2, max_gev: 2.4, complete_screening: true, channel_count: 24}}
 channels:
   - {name: one pion, reaction: "gamma p -> p pi0, pi0 -> gamma gamma", fraction: 3}
   - {name: eta, reaction: "gamma p -> p eta, eta -> gamma gamma", angle: {product: eta, slope_per_gev2: 2}}

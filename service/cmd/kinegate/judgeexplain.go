@@ -43,7 +43,7 @@ func (j *judgeRun) explainEvent(
 		defer cancel()
 		reply, err := client.Selections.ExplainVerdict(ctx, &kinegatev1.ExplainVerdictRequest{
 			Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Given{Given: j.checked.GetSelection()}},
-			Block:     b.block, EventIndex: int32(at), MaxAssignmentCount: int32(j.assignments), //nolint:gosec // at most 4,096 and 1,000
+			Block:     b.block, EventIndex: int32(at), MaxAssignmentCount: int64(j.assignments), //nolint:gosec // at most 4,096
 		})
 		if err != nil {
 			return err

@@ -127,11 +127,11 @@ func (e *environment) describeBackscatter(a *kinegatev1.BackscatterAnswer, q *ki
 	e.print("gamma %s -> gamma %s, light of %s on %s of %s", a.GetParticle(), a.GetParticle(),
 		gev(q.GetLightEnergyGev()), a.GetParticle(), gev(a.GetBeamEnergyGev()))
 	t := text.NewTable("", "")
-	t.Row("edge", gev(a.GetHighestGev())+", the largest energy of a photon")
-	t.Row("smallest energy", gev(a.GetLowestGev()))
+	t.Row("edge", gev(a.GetMaxGev())+", the largest energy of a photon")
+	t.Row("smallest energy", gev(a.GetMinGev()))
 	t.Row("mean energy", gev(a.GetMeanGev()))
 	t.Row("cross-section", barn(a.GetTotalBarn()))
-	t.Row("s/m^2 - 1", fmt.Sprintf("%.*g", digits, a.GetInvariant()))
+	t.Row("s/m^2 - 1", fmt.Sprintf("%.*g", digits, a.GetRelativeExcess()))
 	for i, share := range a.GetWindowFractions() {
 		t.Row("fraction in "+energyRange(q.GetWindows()[i]), fmt.Sprintf("%.6g", share))
 	}
@@ -163,12 +163,12 @@ func backscatterPicture(a *kinegatev1.BackscatterAnswer, q *kinegatev1.LaserBack
 		energy[i], spectrum[i], angle[i] = x.GetEnergyGev(), x.GetDifferentialBarnPerGev(), x.GetAngleRad()
 		circular[i], linear[i] = x.GetCircularDegree(), x.GetLinearDegree()
 	}
-	unit, factor := scaleFor(a.GetHighestGev(), quantity.Energy)
-	x := plot.Axis{Label: "energy of the scattered photon (" + unit + ")", Min: 0, Max: 1.1 * a.GetHighestGev() * factor}
+	unit, factor := scaleFor(a.GetMaxGev(), quantity.Energy)
+	x := plot.Axis{Label: "energy of the scattered photon (" + unit + ")", Min: 0, Max: 1.1 * a.GetMaxGev() * factor}
 	energy = scaled(energy, factor)
 	perUnit, perFactor := scaleFor(largest(spectrum)/factor, quantity.CrossSection)
 	per := scaled(spectrum, perFactor/factor)
-	edge := plot.Ruler{At: a.GetHighestGev() * factor, Text: "edge " + shortEnergy(a.GetHighestGev())}
+	edge := plot.Ruler{At: a.GetMaxGev() * factor, Text: "edge " + shortEnergy(a.GetMaxGev())}
 	mean := plot.Ruler{At: a.GetMeanGev() * factor, Text: "mean " + shortEnergy(a.GetMeanGev())}
 	// The spectrum falls from its end to 0 at the edge.
 	spectrumX, spectrumY := slices.Concat(energy, energy[n-1:]), slices.Concat(per, []float64{0})

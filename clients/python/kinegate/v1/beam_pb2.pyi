@@ -63,18 +63,18 @@ class BeamSpectrum(_message.Message):
     def __init__(self, fixed: _Optional[_Union[_kinematics_pb2.BeamMotion, _Mapping]] = ..., even: _Optional[_Union[_kinematics_pb2.EnergyRange, _Mapping]] = ..., bremsstrahlung: _Optional[_Union[BremsstrahlungSpectrum, _Mapping]] = ..., histogram: _Optional[_Union[FluxHistogram, _Mapping]] = ..., backscatter: _Optional[_Union[BackscatterSpectrum, _Mapping]] = ...) -> None: ...
 
 class BremsstrahlungSpectrum(_message.Message):
-    __slots__ = ("electron_gev", "low_gev", "high_gev", "complete_screening", "channel_count")
+    __slots__ = ("electron_gev", "min_gev", "max_gev", "complete_screening", "channel_count")
     ELECTRON_GEV_FIELD_NUMBER: _ClassVar[int]
-    LOW_GEV_FIELD_NUMBER: _ClassVar[int]
-    HIGH_GEV_FIELD_NUMBER: _ClassVar[int]
+    MIN_GEV_FIELD_NUMBER: _ClassVar[int]
+    MAX_GEV_FIELD_NUMBER: _ClassVar[int]
     COMPLETE_SCREENING_FIELD_NUMBER: _ClassVar[int]
     CHANNEL_COUNT_FIELD_NUMBER: _ClassVar[int]
     electron_gev: float
-    low_gev: float
-    high_gev: float
+    min_gev: float
+    max_gev: float
     complete_screening: bool
     channel_count: int
-    def __init__(self, electron_gev: _Optional[float] = ..., low_gev: _Optional[float] = ..., high_gev: _Optional[float] = ..., complete_screening: bool = ..., channel_count: _Optional[int] = ...) -> None: ...
+    def __init__(self, electron_gev: _Optional[float] = ..., min_gev: _Optional[float] = ..., max_gev: _Optional[float] = ..., complete_screening: bool = ..., channel_count: _Optional[int] = ...) -> None: ...
 
 class FluxHistogram(_message.Message):
     __slots__ = ("edges_gev", "contents")
@@ -85,20 +85,20 @@ class FluxHistogram(_message.Message):
     def __init__(self, edges_gev: _Optional[_Iterable[float]] = ..., contents: _Optional[_Iterable[float]] = ...) -> None: ...
 
 class BackscatterSpectrum(_message.Message):
-    __slots__ = ("particle", "beam", "light_energy_gev", "angle_between_beams_rad", "low_gev", "high_gev")
+    __slots__ = ("particle", "beam", "light_energy_gev", "angle_between_beams_rad", "min_gev", "max_gev")
     PARTICLE_FIELD_NUMBER: _ClassVar[int]
     BEAM_FIELD_NUMBER: _ClassVar[int]
     LIGHT_ENERGY_GEV_FIELD_NUMBER: _ClassVar[int]
     ANGLE_BETWEEN_BEAMS_RAD_FIELD_NUMBER: _ClassVar[int]
-    LOW_GEV_FIELD_NUMBER: _ClassVar[int]
-    HIGH_GEV_FIELD_NUMBER: _ClassVar[int]
+    MIN_GEV_FIELD_NUMBER: _ClassVar[int]
+    MAX_GEV_FIELD_NUMBER: _ClassVar[int]
     particle: str
     beam: _kinematics_pb2.BeamMotion
     light_energy_gev: float
     angle_between_beams_rad: float
-    low_gev: float
-    high_gev: float
-    def __init__(self, particle: _Optional[str] = ..., beam: _Optional[_Union[_kinematics_pb2.BeamMotion, _Mapping]] = ..., light_energy_gev: _Optional[float] = ..., angle_between_beams_rad: _Optional[float] = ..., low_gev: _Optional[float] = ..., high_gev: _Optional[float] = ...) -> None: ...
+    min_gev: float
+    max_gev: float
+    def __init__(self, particle: _Optional[str] = ..., beam: _Optional[_Union[_kinematics_pb2.BeamMotion, _Mapping]] = ..., light_energy_gev: _Optional[float] = ..., angle_between_beams_rad: _Optional[float] = ..., min_gev: _Optional[float] = ..., max_gev: _Optional[float] = ...) -> None: ...
 
 class TargetRegion(_message.Message):
     __slots__ = ("centre_x_m", "centre_y_m", "centre_z_m", "length_m", "sigma_x_m", "sigma_y_m")

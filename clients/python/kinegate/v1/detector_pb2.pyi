@@ -109,9 +109,9 @@ class ClusterNoise(_message.Message):
     def __init__(self, probability: _Optional[float] = ..., mean_gev: _Optional[float] = ...) -> None: ...
 
 class Tracker(_message.Message):
-    __slots__ = ("theta", "momentum_min_gev", "constant", "per_gev", "angle_sigma_rad", "efficiency", "identify", "confusions")
+    __slots__ = ("theta", "min_momentum_gev", "constant", "per_gev", "angle_sigma_rad", "efficiency", "identify", "confusions")
     THETA_FIELD_NUMBER: _ClassVar[int]
-    MOMENTUM_MIN_GEV_FIELD_NUMBER: _ClassVar[int]
+    MIN_MOMENTUM_GEV_FIELD_NUMBER: _ClassVar[int]
     CONSTANT_FIELD_NUMBER: _ClassVar[int]
     PER_GEV_FIELD_NUMBER: _ClassVar[int]
     ANGLE_SIGMA_RAD_FIELD_NUMBER: _ClassVar[int]
@@ -119,14 +119,14 @@ class Tracker(_message.Message):
     IDENTIFY_FIELD_NUMBER: _ClassVar[int]
     CONFUSIONS_FIELD_NUMBER: _ClassVar[int]
     theta: PolarRange
-    momentum_min_gev: float
+    min_momentum_gev: float
     constant: float
     per_gev: float
     angle_sigma_rad: float
     efficiency: float
     identify: bool
     confusions: _containers.RepeatedCompositeFieldContainer[SpeciesConfusion]
-    def __init__(self, theta: _Optional[_Union[PolarRange, _Mapping]] = ..., momentum_min_gev: _Optional[float] = ..., constant: _Optional[float] = ..., per_gev: _Optional[float] = ..., angle_sigma_rad: _Optional[float] = ..., efficiency: _Optional[float] = ..., identify: bool = ..., confusions: _Optional[_Iterable[_Union[SpeciesConfusion, _Mapping]]] = ...) -> None: ...
+    def __init__(self, theta: _Optional[_Union[PolarRange, _Mapping]] = ..., min_momentum_gev: _Optional[float] = ..., constant: _Optional[float] = ..., per_gev: _Optional[float] = ..., angle_sigma_rad: _Optional[float] = ..., efficiency: _Optional[float] = ..., identify: bool = ..., confusions: _Optional[_Iterable[_Union[SpeciesConfusion, _Mapping]]] = ...) -> None: ...
 
 class SpeciesConfusion(_message.Message):
     __slots__ = ("species", "taken_for", "probability")
@@ -139,16 +139,16 @@ class SpeciesConfusion(_message.Message):
     def __init__(self, species: _Optional[_Union[Species, str]] = ..., taken_for: _Optional[_Union[Species, str]] = ..., probability: _Optional[float] = ...) -> None: ...
 
 class DirectionDetector(_message.Message):
-    __slots__ = ("theta", "momentum_min_gev", "angle_sigma_rad", "efficiency")
+    __slots__ = ("theta", "min_momentum_gev", "angle_sigma_rad", "efficiency")
     THETA_FIELD_NUMBER: _ClassVar[int]
-    MOMENTUM_MIN_GEV_FIELD_NUMBER: _ClassVar[int]
+    MIN_MOMENTUM_GEV_FIELD_NUMBER: _ClassVar[int]
     ANGLE_SIGMA_RAD_FIELD_NUMBER: _ClassVar[int]
     EFFICIENCY_FIELD_NUMBER: _ClassVar[int]
     theta: PolarRange
-    momentum_min_gev: float
+    min_momentum_gev: float
     angle_sigma_rad: float
     efficiency: float
-    def __init__(self, theta: _Optional[_Union[PolarRange, _Mapping]] = ..., momentum_min_gev: _Optional[float] = ..., angle_sigma_rad: _Optional[float] = ..., efficiency: _Optional[float] = ...) -> None: ...
+    def __init__(self, theta: _Optional[_Union[PolarRange, _Mapping]] = ..., min_momentum_gev: _Optional[float] = ..., angle_sigma_rad: _Optional[float] = ..., efficiency: _Optional[float] = ...) -> None: ...
 
 class Tagger(_message.Message):
     __slots__ = ("edges_gev", "sigma_gev", "time_sigma_ns")
@@ -171,15 +171,15 @@ class VertexDetector(_message.Message):
     def __init__(self, sigma_x_m: _Optional[float] = ..., sigma_y_m: _Optional[float] = ..., sigma_z_m: _Optional[float] = ...) -> None: ...
 
 class DisplacedVertexDetector(_message.Message):
-    __slots__ = ("distance_min_m", "sigma_x_m", "sigma_y_m", "sigma_z_m", "efficiency")
-    DISTANCE_MIN_M_FIELD_NUMBER: _ClassVar[int]
+    __slots__ = ("min_distance_m", "sigma_x_m", "sigma_y_m", "sigma_z_m", "efficiency")
+    MIN_DISTANCE_M_FIELD_NUMBER: _ClassVar[int]
     SIGMA_X_M_FIELD_NUMBER: _ClassVar[int]
     SIGMA_Y_M_FIELD_NUMBER: _ClassVar[int]
     SIGMA_Z_M_FIELD_NUMBER: _ClassVar[int]
     EFFICIENCY_FIELD_NUMBER: _ClassVar[int]
-    distance_min_m: float
+    min_distance_m: float
     sigma_x_m: float
     sigma_y_m: float
     sigma_z_m: float
     efficiency: float
-    def __init__(self, distance_min_m: _Optional[float] = ..., sigma_x_m: _Optional[float] = ..., sigma_y_m: _Optional[float] = ..., sigma_z_m: _Optional[float] = ..., efficiency: _Optional[float] = ...) -> None: ...
+    def __init__(self, min_distance_m: _Optional[float] = ..., sigma_x_m: _Optional[float] = ..., sigma_y_m: _Optional[float] = ..., sigma_z_m: _Optional[float] = ..., efficiency: _Optional[float] = ...) -> None: ...

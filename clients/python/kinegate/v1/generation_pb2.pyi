@@ -165,18 +165,18 @@ class DecayOptions(_message.Message):
     def __init__(self, product: _Optional[str] = ..., branching_fraction: _Optional[float] = ..., line_shape: _Optional[_Union[LineShape, _Mapping]] = ..., dalitz_polynomial: _Optional[_Union[DalitzPolynomial, _Mapping]] = ..., vector_to_three: _Optional[_Union[VectorToThree, _Mapping]] = ..., lepton_decay: _Optional[_Union[LeptonDecay, _Mapping]] = ..., beta_decay: _Optional[_Union[BetaDecay, _Mapping]] = ..., cosine: _Optional[_Union[CosineTable, _Mapping]] = ...) -> None: ...
 
 class LineShape(_message.Message):
-    __slots__ = ("angular_momentum", "radius_per_gev", "constant_width", "low_gev", "high_gev")
+    __slots__ = ("angular_momentum", "radius_per_gev", "constant_width", "min_gev", "max_gev")
     ANGULAR_MOMENTUM_FIELD_NUMBER: _ClassVar[int]
     RADIUS_PER_GEV_FIELD_NUMBER: _ClassVar[int]
     CONSTANT_WIDTH_FIELD_NUMBER: _ClassVar[int]
-    LOW_GEV_FIELD_NUMBER: _ClassVar[int]
-    HIGH_GEV_FIELD_NUMBER: _ClassVar[int]
+    MIN_GEV_FIELD_NUMBER: _ClassVar[int]
+    MAX_GEV_FIELD_NUMBER: _ClassVar[int]
     angular_momentum: int
     radius_per_gev: float
     constant_width: bool
-    low_gev: float
-    high_gev: float
-    def __init__(self, angular_momentum: _Optional[int] = ..., radius_per_gev: _Optional[float] = ..., constant_width: bool = ..., low_gev: _Optional[float] = ..., high_gev: _Optional[float] = ...) -> None: ...
+    min_gev: float
+    max_gev: float
+    def __init__(self, angular_momentum: _Optional[int] = ..., radius_per_gev: _Optional[float] = ..., constant_width: bool = ..., min_gev: _Optional[float] = ..., max_gev: _Optional[float] = ...) -> None: ...
 
 class DalitzPolynomial(_message.Message):
     __slots__ = ("terms",)

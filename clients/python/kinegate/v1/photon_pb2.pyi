@@ -247,13 +247,13 @@ class BackscatterPolarisation(_message.Message):
     def __init__(self, circular_degree: _Optional[float] = ..., linear_degree: _Optional[float] = ..., beam_degree: _Optional[float] = ...) -> None: ...
 
 class BackscatterAnswer(_message.Message):
-    __slots__ = ("particle", "mass_gev", "beam_energy_gev", "invariant", "lowest_gev", "highest_gev", "mean_gev", "total_barn", "points", "angles", "window_fractions")
+    __slots__ = ("particle", "mass_gev", "beam_energy_gev", "relative_excess", "min_gev", "max_gev", "mean_gev", "total_barn", "points", "angles", "window_fractions")
     PARTICLE_FIELD_NUMBER: _ClassVar[int]
     MASS_GEV_FIELD_NUMBER: _ClassVar[int]
     BEAM_ENERGY_GEV_FIELD_NUMBER: _ClassVar[int]
-    INVARIANT_FIELD_NUMBER: _ClassVar[int]
-    LOWEST_GEV_FIELD_NUMBER: _ClassVar[int]
-    HIGHEST_GEV_FIELD_NUMBER: _ClassVar[int]
+    RELATIVE_EXCESS_FIELD_NUMBER: _ClassVar[int]
+    MIN_GEV_FIELD_NUMBER: _ClassVar[int]
+    MAX_GEV_FIELD_NUMBER: _ClassVar[int]
     MEAN_GEV_FIELD_NUMBER: _ClassVar[int]
     TOTAL_BARN_FIELD_NUMBER: _ClassVar[int]
     POINTS_FIELD_NUMBER: _ClassVar[int]
@@ -262,15 +262,15 @@ class BackscatterAnswer(_message.Message):
     particle: str
     mass_gev: float
     beam_energy_gev: float
-    invariant: float
-    lowest_gev: float
-    highest_gev: float
+    relative_excess: float
+    min_gev: float
+    max_gev: float
     mean_gev: float
     total_barn: float
     points: _containers.RepeatedCompositeFieldContainer[BackscatterPoint]
     angles: _containers.RepeatedCompositeFieldContainer[BackscatterAngle]
     window_fractions: _containers.RepeatedScalarFieldContainer[float]
-    def __init__(self, particle: _Optional[str] = ..., mass_gev: _Optional[float] = ..., beam_energy_gev: _Optional[float] = ..., invariant: _Optional[float] = ..., lowest_gev: _Optional[float] = ..., highest_gev: _Optional[float] = ..., mean_gev: _Optional[float] = ..., total_barn: _Optional[float] = ..., points: _Optional[_Iterable[_Union[BackscatterPoint, _Mapping]]] = ..., angles: _Optional[_Iterable[_Union[BackscatterAngle, _Mapping]]] = ..., window_fractions: _Optional[_Iterable[float]] = ...) -> None: ...
+    def __init__(self, particle: _Optional[str] = ..., mass_gev: _Optional[float] = ..., beam_energy_gev: _Optional[float] = ..., relative_excess: _Optional[float] = ..., min_gev: _Optional[float] = ..., max_gev: _Optional[float] = ..., mean_gev: _Optional[float] = ..., total_barn: _Optional[float] = ..., points: _Optional[_Iterable[_Union[BackscatterPoint, _Mapping]]] = ..., angles: _Optional[_Iterable[_Union[BackscatterAngle, _Mapping]]] = ..., window_fractions: _Optional[_Iterable[float]] = ...) -> None: ...
 
 class BackscatterPoint(_message.Message):
     __slots__ = ("energy_gev", "angle_rad", "differential_barn_per_gev", "circular_degree", "linear_degree")

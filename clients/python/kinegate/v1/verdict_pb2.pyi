@@ -86,13 +86,13 @@ class GroupBest(_message.Message):
     def __init__(self, best: _Optional[bytes] = ...) -> None: ...
 
 class EntryColumns(_message.Message):
-    __slots__ = ("offsets", "hypothesis_indices", "beam_rows", "weights", "statuses", "assignments_tried", "assignment_offsets", "assignments", "observable_offsets", "observables", "observable_uncertainties", "fits")
+    __slots__ = ("offsets", "hypothesis_indices", "beam_rows", "weights", "statuses", "assignment_counts", "assignment_offsets", "assignments", "observable_offsets", "observables", "observable_uncertainties", "fits")
     OFFSETS_FIELD_NUMBER: _ClassVar[int]
     HYPOTHESIS_INDICES_FIELD_NUMBER: _ClassVar[int]
     BEAM_ROWS_FIELD_NUMBER: _ClassVar[int]
     WEIGHTS_FIELD_NUMBER: _ClassVar[int]
     STATUSES_FIELD_NUMBER: _ClassVar[int]
-    ASSIGNMENTS_TRIED_FIELD_NUMBER: _ClassVar[int]
+    ASSIGNMENT_COUNTS_FIELD_NUMBER: _ClassVar[int]
     ASSIGNMENT_OFFSETS_FIELD_NUMBER: _ClassVar[int]
     ASSIGNMENTS_FIELD_NUMBER: _ClassVar[int]
     OBSERVABLE_OFFSETS_FIELD_NUMBER: _ClassVar[int]
@@ -104,25 +104,25 @@ class EntryColumns(_message.Message):
     beam_rows: bytes
     weights: bytes
     statuses: bytes
-    assignments_tried: bytes
+    assignment_counts: bytes
     assignment_offsets: bytes
     assignments: bytes
     observable_offsets: bytes
     observables: bytes
     observable_uncertainties: bytes
     fits: FitColumns
-    def __init__(self, offsets: _Optional[bytes] = ..., hypothesis_indices: _Optional[bytes] = ..., beam_rows: _Optional[bytes] = ..., weights: _Optional[bytes] = ..., statuses: _Optional[bytes] = ..., assignments_tried: _Optional[bytes] = ..., assignment_offsets: _Optional[bytes] = ..., assignments: _Optional[bytes] = ..., observable_offsets: _Optional[bytes] = ..., observables: _Optional[bytes] = ..., observable_uncertainties: _Optional[bytes] = ..., fits: _Optional[_Union[FitColumns, _Mapping]] = ...) -> None: ...
+    def __init__(self, offsets: _Optional[bytes] = ..., hypothesis_indices: _Optional[bytes] = ..., beam_rows: _Optional[bytes] = ..., weights: _Optional[bytes] = ..., statuses: _Optional[bytes] = ..., assignment_counts: _Optional[bytes] = ..., assignment_offsets: _Optional[bytes] = ..., assignments: _Optional[bytes] = ..., observable_offsets: _Optional[bytes] = ..., observables: _Optional[bytes] = ..., observable_uncertainties: _Optional[bytes] = ..., fits: _Optional[_Union[FitColumns, _Mapping]] = ...) -> None: ...
 
 class FitColumns(_message.Message):
-    __slots__ = ("statuses", "chi_squares", "degrees_of_freedom", "probabilities", "iterations")
+    __slots__ = ("statuses", "chi_squares", "degrees_of_freedom", "probabilities", "iteration_counts")
     STATUSES_FIELD_NUMBER: _ClassVar[int]
     CHI_SQUARES_FIELD_NUMBER: _ClassVar[int]
     DEGREES_OF_FREEDOM_FIELD_NUMBER: _ClassVar[int]
     PROBABILITIES_FIELD_NUMBER: _ClassVar[int]
-    ITERATIONS_FIELD_NUMBER: _ClassVar[int]
+    ITERATION_COUNTS_FIELD_NUMBER: _ClassVar[int]
     statuses: bytes
     chi_squares: bytes
     degrees_of_freedom: bytes
     probabilities: bytes
-    iterations: bytes
-    def __init__(self, statuses: _Optional[bytes] = ..., chi_squares: _Optional[bytes] = ..., degrees_of_freedom: _Optional[bytes] = ..., probabilities: _Optional[bytes] = ..., iterations: _Optional[bytes] = ...) -> None: ...
+    iteration_counts: bytes
+    def __init__(self, statuses: _Optional[bytes] = ..., chi_squares: _Optional[bytes] = ..., degrees_of_freedom: _Optional[bytes] = ..., probabilities: _Optional[bytes] = ..., iteration_counts: _Optional[bytes] = ...) -> None: ...

@@ -63,7 +63,7 @@ func initialState() *kinegatev1.GenerationInitialState {
 	return &kinegatev1.GenerationInitialState{Kind: &kinegatev1.GenerationInitialState_BeamOnTarget{
 		BeamOnTarget: &kinegatev1.SpectrumOnTarget{Beam: &kinegatev1.BeamSpectrum{
 			Kind: &kinegatev1.BeamSpectrum_Bremsstrahlung{Bremsstrahlung: &kinegatev1.BremsstrahlungSpectrum{
-				ElectronGev: ElectronGeV, LowGev: LowGeV, HighGev: HighGeV, CompleteScreening: true, ChannelCount: TaggerCount,
+				ElectronGev: ElectronGeV, MinGev: LowGeV, MaxGev: HighGeV, CompleteScreening: true, ChannelCount: TaggerCount,
 			}},
 		}},
 	}}
@@ -116,7 +116,7 @@ func Detector() *kinegatev1.Detector {
 		},
 		Tracker: &kinegatev1.Tracker{
 			Theta:          polar(10, 140),
-			MomentumMinGev: 0.15,
+			MinMomentumGev: 0.15,
 			Constant:       0.015, PerGev: 0.01,
 			AngleSigmaRad: 0.003,
 			Efficiency:    &tracker,
@@ -127,7 +127,7 @@ func Detector() *kinegatev1.Detector {
 			},
 		},
 		Recoil: &kinegatev1.DirectionDetector{
-			Theta: polar(10, 140), MomentumMinGev: 0.15, AngleSigmaRad: 0.008, Efficiency: &tracker,
+			Theta: polar(10, 140), MinMomentumGev: 0.15, AngleSigmaRad: 0.008, Efficiency: &tracker,
 		},
 		Tagger: &kinegatev1.Tagger{EdgesGev: edges, TimeSigmaNs: 1.5},
 	}

@@ -121,10 +121,11 @@ func writeColumn(b *bytes.Buffer, f protoreflect.FieldDescriptor, raw []byte) er
 	switch {
 	case name == "event_ids" || name == "particle_numbers":
 		return array(b, raw, column.Int64s, func(x int64) string { return `"` + strconv.FormatInt(x, 10) + `"` })
-	case strings.HasSuffix(name, "offsets") || name == "groups" || name == "assignments_tried":
+	case strings.HasSuffix(name, "offsets") || name == "groups" || name == "assignment_counts":
 		return array(b, raw, column.Int32s, func(x int32) string { return strconv.Itoa(int(x)) })
 	case slices.Contains([]string{
 		"hypothesis_indices", "beam_rows", "assignments", "best", "channels", "parents", "object_particles",
+		"degrees_of_freedom", "iteration_counts",
 	}, name):
 		return array(b, raw, column.Int16s, func(x int16) string { return strconv.Itoa(int(x)) })
 	case slices.Contains([]string{"object_classes", "masks", "statuses", "gate", "accepted", "decayed"}, name):

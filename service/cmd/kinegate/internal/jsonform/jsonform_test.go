@@ -41,11 +41,15 @@ func TestColumnsAreArrays(t *testing.T) {
 		Groups: []*kinegatev1.GroupBest{{Best: column.Int16([]int16{0, -1})}},
 		Entries: &kinegatev1.EntryColumns{
 			Offsets: column.Int32([]int32{0, 1, 1}), Observables: column.Float64([]float64{0.1349768, math.NaN()}),
+			AssignmentCounts: column.Int32([]int32{3}),
+			Fits: &kinegatev1.FitColumns{
+				DegreesOfFreedom: column.Int16([]int16{2}), IterationCounts: column.Int16([]int16{4}),
+			},
 		},
 	})
 	want := `{
   "sequence": "7",
-  "event_count": 2,
+  "event_count": "2",
   "statuses": [
     1,
     3
@@ -67,10 +71,21 @@ func TestColumnsAreArrays(t *testing.T) {
       1,
       1
     ],
+    "assignment_counts": [
+      3
+    ],
     "observables": [
       0.1349768,
       "NaN"
-    ]
+    ],
+    "fits": {
+      "degrees_of_freedom": [
+        2
+      ],
+      "iteration_counts": [
+        4
+      ]
+    }
   }
 }`
 	if err != nil || string(text) != want {
