@@ -9,7 +9,7 @@
 // service, so that a small installation can use one address, and each is a server of
 // its own, so that neither waits for the other's connections. Three more are plain
 // and for operators: Health (grpc.health.v1 alone), Metrics (HTTP: /metrics, /livez,
-// /readyz) and Debug (profiles; loopback only).
+// /readyz) and Debug (profiles and channelz; loopback only).
 //
 // # Around a call
 //

@@ -10,9 +10,12 @@ import (
 	"testing"
 	"time"
 
+	channelzpb "google.golang.org/grpc/channelz/grpc_channelz_v1"
+	"google.golang.org/grpc/codes"
 	healthpb "google.golang.org/grpc/health/grpc_health_v1"
 	reflectionpb "google.golang.org/grpc/reflection/grpc_reflection_v1"
 	reflectionalphapb "google.golang.org/grpc/reflection/grpc_reflection_v1alpha"
+	"google.golang.org/grpc/status"
 
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 	"example.org/kinegate/service/api"
@@ -215,6 +218,23 @@ func TestDebugListener(t *testing.T) {
 	}
 	if code, _ := get(t, client, "/debug/pprof/"); code != 404 {
 		t.Errorf("profiles beside the metrics: %d", code)
+	}
+	ask := func(where string) (*channelzpb.GetServersResponse, error) {
+		return channelzpb.NewChannelzClient(r.dial(t, where)).GetServers(t.Context(), &channelzpb.GetServersRequest{})
+	}
+	if _, err := ask(r.options.GeneralAddress); status.Code(err) != codes.Unimplemented {
+		t.Errorf("channelz beside the rpcs: %v", err)
+	}
+	servers, err := ask(r.options.DebugAddress)
+	if err != nil {
+		t.Fatal(err)
+	}
+	started := int64(0)
+	for _, s := range servers.GetServer() {
+		started += s.GetData().GetCallsStarted()
+	}
+	if len(servers.GetServer()) < len(r.fronts) || started == 0 {
+		t.Errorf("channelz knows %v", servers)
 	}
 }
 

@@ -10,6 +10,8 @@ import (
 	"github.com/prometheus/client_golang/prometheus"
 	"github.com/prometheus/client_golang/prometheus/promhttp"
 	"github.com/rs/zerolog"
+	"google.golang.org/grpc"
+	channelz "google.golang.org/grpc/channelz/service"
 )
 
 // Bounds of the HTTP listeners. Profiles take as long as they are asked to, a scrape
@@ -36,15 +38,24 @@ func metricsWeb(registry *prometheus.Registry, h *health, log zerolog.Logger) *h
 	return web(mux, log)
 }
 
-// debugWeb serves profiles.
+// debugWeb serves profiles and, over HTTP/2, what gRPC knows of its own servers, channels
+// and connections.
 func debugWeb(log zerolog.Logger) *http.Server {
 	mux := http.NewServeMux()
+	known := grpc.NewServer()
+	channelz.RegisterChannelzServiceToServer(known)
+	mux.Handle("POST /grpc.channelz.v1.Channelz/", known)
 	mux.HandleFunc("GET /debug/pprof/", pprof.Index)
 	mux.HandleFunc("GET /debug/pprof/cmdline", pprof.Cmdline)
 	mux.HandleFunc("GET /debug/pprof/profile", pprof.Profile)
 	mux.HandleFunc("GET /debug/pprof/symbol", pprof.Symbol)
 	mux.HandleFunc("GET /debug/pprof/trace", pprof.Trace)
-	return web(mux, log)
+	w := web(mux, log)
+	w.Protocols = new(http.Protocols)
+	w.Protocols.SetHTTP1(true)
+	w.Protocols.SetUnencryptedHTTP2(true)
+	w.RegisterOnShutdown(known.Stop)
+	return w
 }
 
 // web returns an HTTP server within its bounds, which logs what it complains about as
