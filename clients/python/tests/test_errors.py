@@ -134,7 +134,7 @@ def test_forked_child_leaves_streams_and_server_alone(testdata: Path) -> None:
     for _ in range(3):  # gRPC itself may hang when a thread of it is at work at the fork
         with subprocess.Popen(program, env=environment, start_new_session=True) as process:
             try:
-                assert process.wait(60) == 0
+                assert process.wait(30) == 0
             except subprocess.TimeoutExpired:
                 continue
             else:
