@@ -11,6 +11,8 @@ import (
 	"google.golang.org/grpc"
 	"google.golang.org/grpc/credentials"
 	"google.golang.org/grpc/credentials/insecure"
+	"google.golang.org/grpc/encoding"
+	"google.golang.org/grpc/encoding/proto"
 	"google.golang.org/grpc/keepalive"
 
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
@@ -38,6 +40,10 @@ const (
 	maxMessageBytes  = 4 << 20
 	keepaliveTime    = 20 * time.Second // the server allows a ping every 10 s
 	keepaliveTimeout = 10 * time.Second
+	// What a server may send ahead of its reader: two blocks of simulated events on a
+	// stream, so that one comes while the other is read.
+	streamWindow     = 512 << 10
+	connectionWindow = 4 << 20
 )
 
 // ServiceConfig is how Dial makes calls, in gRPC's own form for those who make their
@@ -116,7 +122,10 @@ func Dial(address string, options Options) (*Client, error) {
 		grpc.WithDefaultCallOptions(
 			grpc.MaxCallRecvMsgSize(maxMessageBytes),
 			grpc.MaxCallSendMsgSize(maxMessageBytes),
+			grpc.ForceCodecV2(codec{encoding.GetCodecV2(proto.Name)}),
 		),
+		grpc.WithInitialWindowSize(streamWindow),
+		grpc.WithInitialConnWindowSize(connectionWindow),
 		grpc.WithKeepaliveParams(keepalive.ClientParameters{
 			Time: keepaliveTime, Timeout: keepaliveTimeout, PermitWithoutStream: true,
 		}),

@@ -37,11 +37,17 @@ func Float64(xs []float64) []byte { return AppendFloat64([]byte{}, xs) }
 
 // AppendFloat64 appends the encoded numbers.
 func AppendFloat64(b []byte, xs []float64) []byte {
-	b = slices.Grow(b, sizeFloat64*len(xs))
+	b, tail := space(b, sizeFloat64*len(xs))
 	for _, x := range xs {
-		b = binary.LittleEndian.AppendUint64(b, math.Float64bits(x))
+		binary.LittleEndian.PutUint64(tail, math.Float64bits(x))
+		tail = tail[sizeFloat64:]
 	}
 	return b
+}
+
+// PutFloat64 writes number i of a column that has room for it.
+func PutFloat64(column []byte, i int, x float64) {
+	binary.LittleEndian.PutUint64(column[sizeFloat64*i:], math.Float64bits(x))
 }
 
 // Int64 encodes whole numbers of 64 bits.
@@ -49,9 +55,10 @@ func Int64(xs []int64) []byte { return AppendInt64([]byte{}, xs) }
 
 // AppendInt64 appends the encoded whole numbers of 64 bits.
 func AppendInt64(b []byte, xs []int64) []byte {
-	b = slices.Grow(b, sizeInt64*len(xs))
+	b, tail := space(b, sizeInt64*len(xs))
 	for _, x := range xs {
-		b = binary.LittleEndian.AppendUint64(b, uint64(x)) //nolint:gosec // the bits are two's complement
+		binary.LittleEndian.PutUint64(tail, uint64(x)) //nolint:gosec // the bits are two's complement
+		tail = tail[sizeInt64:]
 	}
 	return b
 }
@@ -61,9 +68,10 @@ func Int32(xs []int32) []byte { return AppendInt32([]byte{}, xs) }
 
 // AppendInt32 appends the encoded whole numbers of 32 bits.
 func AppendInt32(b []byte, xs []int32) []byte {
-	b = slices.Grow(b, sizeInt32*len(xs))
+	b, tail := space(b, sizeInt32*len(xs))
 	for _, x := range xs {
-		b = binary.LittleEndian.AppendUint32(b, uint32(x)) //nolint:gosec // the bits are two's complement
+		binary.LittleEndian.PutUint32(tail, uint32(x)) //nolint:gosec // the bits are two's complement
+		tail = tail[sizeInt32:]
 	}
 	return b
 }
@@ -73,9 +81,10 @@ func Int16(xs []int16) []byte { return AppendInt16([]byte{}, xs) }
 
 // AppendInt16 appends the encoded whole numbers of 16 bits.
 func AppendInt16(b []byte, xs []int16) []byte {
-	b = slices.Grow(b, sizeInt16*len(xs))
+	b, tail := space(b, sizeInt16*len(xs))
 	for _, x := range xs {
-		b = binary.LittleEndian.AppendUint16(b, uint16(x)) //nolint:gosec // the bits are two's complement
+		binary.LittleEndian.PutUint16(tail, uint16(x)) //nolint:gosec // the bits are two's complement
+		tail = tail[sizeInt16:]
 	}
 	return b
 }
@@ -85,11 +94,17 @@ func Uint8[T ~uint8](xs []T) []byte { return AppendUint8([]byte{}, xs) }
 
 // AppendUint8 appends the encoded values of one byte.
 func AppendUint8[T ~uint8](b []byte, xs []T) []byte {
-	b = slices.Grow(b, len(xs))
-	for _, x := range xs {
-		b = append(b, byte(x))
+	b, tail := space(b, len(xs))
+	for i, x := range xs {
+		tail[i] = byte(x)
 	}
 	return b
+}
+
+// space lengthens b by n bytes and returns it with those.
+func space(b []byte, n int) (all, tail []byte) {
+	all = slices.Grow(b, n)[:len(b)+n]
+	return all, all[len(b):]
 }
 
 // Float64s decodes numbers.

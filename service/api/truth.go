@@ -1,6 +1,8 @@
 package api
 
 import (
+	"slices"
+
 	"example.org/kinegate/kinematics/event"
 	"example.org/kinegate/kinematics/momentum"
 	"example.org/kinegate/proto/column"
@@ -42,35 +44,39 @@ func (w *columnWriter) int16s(xs []int16) []byte {
 }
 
 func (w *columnWriter) bools(xs []bool) []byte {
-	start := len(w.arena)
-	for _, x := range xs {
-		var b byte
+	flags := w.room(len(xs))
+	for i, x := range xs {
 		if x {
-			b = 1
+			flags[i] = 1
 		}
-		w.arena = append(w.arena, b)
 	}
-	return w.since(start)
+	return flags
 }
 
-// numbers encodes one number of each row.
-func (w *columnWriter) numbers(n int, of func(i int) float64) []byte {
+// room is a column of n zero bytes.
+func (w *columnWriter) room(n int) []byte {
 	start := len(w.arena)
-	for i := range n {
-		x := [1]float64{of(i)}
-		w.arena = column.AppendFloat64(w.arena, x[:])
-	}
+	w.arena = slices.Grow(w.arena, n)[:start+n]
+	clear(w.arena[start:])
 	return w.since(start)
 }
 
+// momenta encodes four columns in one pass.
 func (w *columnWriter) momenta(xs []momentum.Four) *kinegatev1.EnergyMomentumColumns {
-	n := len(xs)
-	return &kinegatev1.EnergyMomentumColumns{
-		EnergyGev: w.numbers(n, func(i int) float64 { return xs[i].E }),
-		PxGev:     w.numbers(n, func(i int) float64 { return xs[i].P.X }),
-		PyGev:     w.numbers(n, func(i int) float64 { return xs[i].P.Y }),
-		PzGev:     w.numbers(n, func(i int) float64 { return xs[i].P.Z }),
+	const size = 8
+	m := &kinegatev1.EnergyMomentumColumns{
+		EnergyGev: w.room(size * len(xs)), PxGev: w.room(size * len(xs)),
+		PyGev: w.room(size * len(xs)), PzGev: w.room(size * len(xs)),
 	}
+	e, x, y, z := m.GetEnergyGev(), m.GetPxGev(), m.GetPyGev(), m.GetPzGev()
+	for i := range xs {
+		p := &xs[i]
+		column.PutFloat64(e, i, p.E)
+		column.PutFloat64(x, i, p.P.X)
+		column.PutFloat64(y, i, p.P.Y)
+		column.PutFloat64(z, i, p.P.Z)
+	}
+	return m
 }
 
 func (w *columnWriter) positions(p *event.Positions) *kinegatev1.PositionColumns {
