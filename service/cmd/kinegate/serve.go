@@ -121,6 +121,9 @@ func (s *serving) run(ctx context.Context) error {
 		_, err := fmt.Fprintln(s.out, "the settings and the files that they name are sound")
 		return err
 	}
+	if err := keepSlicesShort(); err != nil {
+		log.Info().Err(err).Msg("slices of the processor stay as they are: verdicts may wait longer beside other work")
+	}
 	until := context.Background()
 	if options.UntilInputEnds {
 		until = s.whileInput(until)
