@@ -78,8 +78,9 @@ type EnergyKind uint8
 
 // The energy dependences.
 const (
-	// ConstantRate is the same rate at every energy at which the channel is open
-	// with nominal masses (or, if it never is, with the lightest ones).
+	// ConstantRate is the same rate at every energy at which the channel is open, with
+	// broad particles down to their lowest masses: it does not change at the threshold
+	// of the nominal masses.
 	ConstantRate EnergyKind = iota
 	// PhaseSpaceRate is the volume of phase space over the flux factor
 	// 4 sqrt((p1.p2)^2 - m1^2 m2^2).

@@ -75,7 +75,7 @@ func (d DalitzPolynomial) shaper([]Product) shaper {
 // the polynomial between two points cannot rise by more than its slope allows:
 // half a step in two directions times the sum of |c| (|px| + |py|) 3^(px+py),
 // since |X| and |Y| are below 2; a fine grid and two per cent do for the low
-// powers of real decays, and what passes counts as an overflow.
+// powers of real decays, and an event that passes is an overflow.
 func (d DalitzPolynomial) largest() float64 {
 	const grid = 100
 	top := 0.0

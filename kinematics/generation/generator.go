@@ -86,9 +86,6 @@ func (g *Generator) open(p *plan) *fault.Error {
 				sevenDigits(p.root.floors) + " GeV, " + sevenDigits(p.root.floors-high) + " GeV more")
 	}
 	p.threshold = p.root.floors
-	if p.channel.Energy.Kind != PhaseSpaceRate && high > p.root.nominal {
-		p.threshold = max(p.threshold, p.root.nominal)
-	}
 	return nil
 }
 
@@ -117,7 +114,7 @@ func (g *Generator) prepare(p *plan, stop func() bool) bool {
 		p.joint = g.scan.jointCeiling(p, low, high)
 	}
 	if g.config.Weighted && p.channel.Energy.Kind != PhaseSpaceRate && low < high {
-		p.norm = g.meanFractions(p, low, high, stop)
+		p.norm = newVolume(p.root.parts(p.nodes), centrifugal{}, high, stop)
 	}
 	return !stop()
 }
@@ -170,34 +167,6 @@ func (s *scan) jointCeiling(p *plan, low, high float64) float64 {
 	return 1.02 * max(top, p.root.ceiling(p.nodes, high)/s.best)
 }
 
-// meanFractions tabulates the mean of weight over ceiling against sqrt(s), so
-// that weighted events over a spread of energies follow the asked rate. Two
-// thousand draws a node give it to about one per cent; the nodes lie closer
-// towards the threshold.
-func (g *Generator) meanFractions(p *plan, low, high float64, stop func() bool) *Curve {
-	const nodes, draws = 48, 2000
-	w := g.NewWorker()
-	c := &Curve{}
-	for i := range nodes + 1 {
-		if stop() {
-			return nil
-		}
-		x := float64(i) / nodes
-		m := between(low, high, x*x)
-		if i == 0 {
-			m = between(low, high, 1e-6)
-		}
-		s := random.New(0, random.Bounds, int64(2+i))
-		sum := 0.0
-		for range draws {
-			sum += p.root.draw(&s, p.nodes, m, w.masses, &w.spaces[0])
-		}
-		c.X = append(c.X, m)
-		c.Y = append(c.Y, sum/draws/p.root.ceiling(p.nodes, m))
-	}
-	return c
-}
-
 // Channels is the number of channels.
 func (g *Generator) Channels() int { return len(g.plans) }
 
@@ -205,13 +174,25 @@ func (g *Generator) Channels() int { return len(g.plans) }
 // which weighted events carry.
 func (g *Generator) Branching(channel int) float64 { return g.plans[channel].branching }
 
+// ThroughWidth tells whether a channel at a constant rate is made below the threshold
+// of its nominal masses too, through the widths alone, and what sqrt(s) in GeV that is.
+func (g *Generator) ThroughWidth(channel int) (nominal float64, below bool) {
+	p := g.plans[channel]
+	for i := range p.channel.Products {
+		nominal += p.channel.Products[i].MassGeV
+	}
+	low, _ := g.source.limits()
+	return nominal, p.channel.Energy.Kind == ConstantRate && max(low, p.threshold) < nominal
+}
+
 // Stats counts what Fill did. Stats of slices add up.
 type Stats struct {
 	// Events made, and how many of them of weight 0.
 	Events, Empty int64
 	// Attempts of the production, redraws included.
 	Attempts int64
-	// Overflows above the unweighting bound, and the largest weight among them.
+	// Overflows: events above the unweighting bound, or the bound of a decay's density,
+	// and the largest weight over its bound among them.
 	Overflows int64
 	Largest   float64
 	// Exhausted events used MaxAttempts up.

@@ -24,11 +24,12 @@ type group struct {
 	text []int
 	// sharp tells that no mass is drawn.
 	sharp bool
-	// floors is the sum of the lowest masses, nominal the sum of the nominal ones.
-	floors, nominal float64
+	// floors is the sum of the lowest masses.
+	floors float64
 	// lowest is the phase space of the lowest masses, for ceilings.
 	lowest PhaseSpace
-	// of a decay
+	// of a decay: the factor of the momentum of two daughters, and their shapes
+	factor   centrifugal
 	density  shaper
 	cosTheta *inverse
 }
@@ -50,8 +51,8 @@ type plan struct {
 	// its highest point.
 	rate    *Curve
 	rateTop float64
-	// norm holds the mean fraction against sqrt(s); nil where not needed.
-	norm *Curve
+	// norm is the mean weight against sqrt(s); nil where not needed.
+	norm *volume
 }
 
 // newPlan prepares a channel; it returns false when it was stopped.
@@ -68,13 +69,13 @@ func newPlan(c *Channel, stop func() bool) (made *plan, ok bool) {
 		last = c.Angle.Product
 		p.angle = newAngle(c.Angle)
 	}
-	p.root = p.grow(c.Products, -1, last)
-	return p, true
+	p.root = p.grow(c.Products, -1, last, stop)
+	return p, !stop()
 }
 
 // grow appends the products and their decays to the nodes and returns their
 // group.
-func (p *plan) grow(products []Product, parent, last int) *group {
+func (p *plan) grow(products []Product, parent, last int, stop func() bool) *group {
 	g := &group{sharp: true}
 	for i := range products {
 		product := &products[i]
@@ -85,9 +86,10 @@ func (p *plan) grow(products []Product, parent, last int) *group {
 			parent: int16(parent), //nolint:gosec // trees are small
 		})
 		if d := product.Decay; d != nil {
-			inner := p.grow(d.Products, row, len(d.Products)-1)
+			inner := p.grow(d.Products, row, len(d.Products)-1, stop)
 			n := &p.nodes[row]
 			n.group, n.life = inner, product.MeanLifeS
+			inner.factor = product.Shape.centrifugal(len(d.Products))
 			if d.Density != nil {
 				inner.density = d.Density.shaper(d.Products)
 			}
@@ -98,22 +100,27 @@ func (p *plan) grow(products []Product, parent, last int) *group {
 				inner.prepare(p.nodes)
 			}
 			if product.broad() {
-				daughters := make([]float64, 0, len(d.Products))
-				for k := range d.Products {
-					daughters = append(daughters, d.Products[k].MassGeV)
-				}
-				n.resonance = newResonance(product.Shape, product.MassGeV, product.WidthGeV, inner.floors, daughters)
+				n.resonance = newResonance(product.Shape, product.MassGeV, product.WidthGeV, inner.parts(p.nodes), stop)
 				n.floor = n.resonance.low
 				g.sharp = false
 			}
 		}
 		g.floors += p.nodes[row].floor
-		g.nominal += product.MassGeV
 	}
 	g.rows = append(g.rows, g.text...)
 	g.rows[last], g.rows[len(g.rows)-1] = g.rows[len(g.rows)-1], g.rows[last]
 	g.prepare(p.nodes)
 	return g
+}
+
+// parts are the particles of the group, in the order of the text, as parts of a
+// volume.
+func (g *group) parts(nodes []node) []part {
+	parts := make([]part, 0, len(g.text))
+	for _, row := range g.text {
+		parts = append(parts, part{low: nodes[row].floor, resonance: nodes[row].resonance})
+	}
+	return parts
 }
 
 // prepare sets the phase space of the lowest masses in the order of the splits.
@@ -126,7 +133,8 @@ func (g *group) prepare(nodes []node) {
 	g.lowest.setMasses(masses)
 }
 
-// ceiling is an upper bound of the weight that draw returns at a total mass m.
+// ceiling is an upper bound of the weight that draw returns at a total mass m > floors:
+// all its factors are largest for the lowest masses or, of line shapes, bounded.
 func (g *group) ceiling(nodes []node, m float64) float64 {
 	w := g.lowest.ceiling(m)
 	if g.sharp {
@@ -137,12 +145,17 @@ func (g *group) ceiling(nodes []node, m float64) float64 {
 			w *= r.ceiling(m - (g.floors - nodes[row].floor))
 		}
 	}
+	if g.factor.l > 0 {
+		w *= g.factor.at(splitMomentum(m-g.floors, m, g.lowest.mass[0], g.lowest.mass[1]))
+	}
 	return w
 }
 
 // draw draws the masses of a group for a total mass m: into masses by row, and
 // into ps in the order of the splits. It returns the weight: phase space times
-// line shapes. A group of sharp masses has ps set already.
+// line shapes and, for a decay to two with a broad daughter, the factor of their
+// momentum. The mean weight is the group's volume. A group of sharp masses has ps
+// set already.
 func (g *group) draw(s *random.Stream, nodes []node, m float64, masses []float64, ps *PhaseSpace) float64 {
 	w := 1.0
 	if !g.sharp {
@@ -159,5 +172,9 @@ func (g *group) draw(s *random.Stream, nodes []node, m float64, masses []float64
 		}
 		ps.setMasses(drawn[:len(g.rows)])
 	}
-	return w * ps.drawMasses(s, m)
+	w *= ps.drawMasses(s, m)
+	if g.factor.l > 0 && !g.sharp && w > 0 {
+		w *= g.factor.at(ps.split[1])
+	}
+	return w
 }

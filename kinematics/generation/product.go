@@ -40,7 +40,8 @@ type Decay struct {
 	Branching float64
 }
 
-// lightest is the mass of the lightest stated final state.
+// lightest is the lowest mass: for a broad particle that of the lightest stated
+// final state, within the limits of its line shape.
 func (p *Product) lightest() float64 {
 	if !p.broad() {
 		return p.MassGeV
@@ -49,7 +50,8 @@ func (p *Product) lightest() float64 {
 	for i := range p.Decay.Products {
 		sum += p.Decay.Products[i].lightest()
 	}
-	return max(sum, p.Shape.LowGeV)
+	low, _ := p.Shape.limits(p.MassGeV, p.WidthGeV, sum)
+	return low
 }
 
 // broad reports whether the mass is drawn.
@@ -124,9 +126,8 @@ func (p *Product) massFaults(list fault.List, field string) fault.List {
 		}
 		return list
 	}
-	r := newResonance(p.Shape, p.MassGeV, p.WidthGeV, sum, nil)
-	if !(r.high > r.low) {
-		list = append(list, fault.New(fault.Infeasible, field+".shape.max_gev", fault.Text(r.high), "> "+fault.Text(r.low)+", the lowest mass"))
+	if low, high := p.Shape.limits(p.MassGeV, p.WidthGeV, sum); !(high > low) {
+		list = append(list, fault.New(fault.Infeasible, field+".shape.max_gev", fault.Text(high), "> "+fault.Text(low)+", the lowest mass"))
 	}
 	return list
 }

@@ -36,7 +36,10 @@ type Worker struct {
 	state   state
 	masses  []float64
 	momenta []momentum.Four
-	made    [MaxBodies]momentum.Four
+	// excess is the product of the accepted weights over their bounds, of those
+	// above them; an event where it is not 1 is an overflow.
+	excess float64
+	made   [MaxBodies]momentum.Four
 }
 
 // NewWorker returns a worker.
@@ -102,7 +105,7 @@ func (w *Worker) Event(id int64, truth *event.Truth) {
 	g := w.generator
 	w.stream = &w.events
 	w.stream.Start(id)
-	w.left = MaxAttempts
+	w.left, w.excess = MaxAttempts, 1
 	channel := 0
 	if g.mixture != nil {
 		channel, _ = choose(g.mixture, w.stream.Uniform())
@@ -123,6 +126,7 @@ func (w *Worker) Event(id int64, truth *event.Truth) {
 		w.stats.Exhausted++
 		weight = 0
 	}
+	weight = float64(weight * w.excess)
 	if weight > 0 {
 		initial = w.write(vertex, truth)
 	}
@@ -144,6 +148,9 @@ func (w *Worker) count(weight float64) {
 	w.stats.Events++
 	if weight == 0 {
 		w.stats.Empty++
+	} else if w.excess > 1 {
+		w.stats.Overflows++
+		w.stats.Largest = max(w.stats.Largest, w.excess)
 	}
 	w.stats.SumWeights += weight
 	w.stats.SumSquares += float64(weight * weight)
@@ -201,7 +208,8 @@ func (w *Worker) produce() float64 {
 	return w.unweighted(func() float64 { return w.drawProducts() / ceiling })
 }
 
-// unweighted redraws until an event is accepted, and returns its weight.
+// unweighted redraws until an event is accepted, and returns its weight up to the
+// excess.
 func (w *Worker) unweighted(fraction func() float64) float64 {
 	bound := w.plan.bound
 	for w.again() {
@@ -210,11 +218,7 @@ func (w *Worker) unweighted(fraction func() float64) float64 {
 		if u := w.stream.Uniform(); float64(u*bound) >= f {
 			continue
 		}
-		if f > bound {
-			w.stats.Overflows++
-			w.stats.Largest = max(w.stats.Largest, f/bound)
-			return f / bound
-		}
+		w.excess *= max(1, f/bound)
 		return 1
 	}
 	w.stats.Exhausted++
@@ -272,8 +276,7 @@ func (w *Worker) weighted() float64 {
 	case ConstantRate, energyKinds:
 	}
 	if p.norm != nil {
-		m := max(w.state.m, p.norm.X[0])
-		weight /= p.norm.At(min(m, p.norm.X[len(p.norm.X)-1])) * p.root.ceiling(p.nodes, w.state.m)
+		weight /= p.norm.at(w.state.m)
 	}
 	return weight
 }
@@ -360,9 +363,11 @@ func (w *Worker) shapedDecay(row int, g *group, ps *PhaseSpace) bool {
 		for k, r := range g.text {
 			daughters[k] = w.momenta[r]
 		}
-		if w.stream.Uniform() >= g.density.fraction(m, daughters[:len(g.text)]) {
+		f := g.density.fraction(m, daughters[:len(g.text)])
+		if w.stream.Uniform() >= f {
 			continue
 		}
+		w.excess *= max(1, f)
 		for _, r := range g.text {
 			w.momenta[r] = carry(w.momenta[r], w.masses[r], w.momenta[row], m)
 		}
@@ -371,7 +376,8 @@ func (w *Worker) shapedDecay(row int, g *group, ps *PhaseSpace) bool {
 	return false
 }
 
-// redraw draws the masses of a decay's daughters until they are accepted.
+// redraw draws the masses of a decay's daughters until they are accepted. No weight
+// passes the ceiling of a group by more than rounding, so none is an overflow.
 func (w *Worker) redraw(g *group, ps *PhaseSpace, m float64) bool {
 	if g.sharp && len(g.rows) == 2 {
 		return ps.drawMasses(w.stream, m) > 0

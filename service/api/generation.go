@@ -245,6 +245,11 @@ func compileGeneration(m *kinegatev1.Generation, table *particle.Table, stop fun
 	}
 	for i, o := range c.outline {
 		o.BranchingFraction = c.generator.Branching(i)
+		if nominal, below := c.generator.ThroughWidth(i); below {
+			o.Remarks = append(o.Remarks, "below sqrt(s) = "+strconv.FormatFloat(nominal, 'g', 7, 64)+
+				" GeV, the threshold of the nominal masses, it is open through widths alone, and made at the same rate; "+
+				"phase_space of its energy, in a generation file, lowers the rate there")
+		}
 	}
 	return c, nil
 }

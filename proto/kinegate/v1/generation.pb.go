@@ -306,7 +306,7 @@ type GenerationChannel struct {
 	Bound *float64 `protobuf:"fixed64,7,opt,name=bound,proto3,oneof" json:"bound,omitempty"`
 	// What replaces the tables for single decays.
 	Decays []*DecayOptions `protobuf:"bytes,8,rep,name=decays,proto3" json:"decays,omitempty"`
-	// Width below which a particle's mass is always the nominal one; 0 means 10 keV.
+	// Width below which a particle's mass is always the nominal one; 0 means 1 MeV.
 	SharpBelowGev float64 `protobuf:"fixed64,9,opt,name=sharp_below_gev,json=sharpBelowGev,proto3" json:"sharp_below_gev,omitempty"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
@@ -565,8 +565,10 @@ func (*LawRate) Descriptor() ([]byte, []int) {
 	return file_kinegate_v1_generation_proto_rawDescGZIP(), []int{4}
 }
 
-// ConstantRate is the same rate at every energy at which the channel is open with
-// nominal masses, or, if it never is, with the lightest ones.
+// ConstantRate is the same rate at every energy at which the channel is open, be it
+// through the widths of broad particles alone: it starts at the lightest stated final
+// state, within the limits of the line shapes, and does not change at the threshold of
+// the nominal masses. Where the beam reaches below that threshold a remark says so.
 type ConstantRate struct {
 	state         protoimpl.MessageState `protogen:"open.v1"`
 	unknownFields protoimpl.UnknownFields
@@ -1102,16 +1104,23 @@ func (*DecayOptions_LeptonDecay) isDecayOptions_Density() {}
 
 func (*DecayOptions_BetaDecay) isDecayOptions_Density() {}
 
-// LineShape is the distribution of the mass m of a broad particle: a relativistic
-// Breit-Wigner with the width G(m) = G0 (m0/m) (q/q0)^(2L+1) B, all broad particles of a
-// decay drawn together with its phase space.
+// LineShape is the distribution of the mass m of a broad particle with the nominal mass m0
+// and width G0: a relativistic Breit-Wigner in m^2,
+// m0 G(m) / ((m^2 - m0^2)^2 + m0^2 G(m)^2), with G(m) = G0 V(m)/V(m0) and the phase space V
+// of the stated decay, taken as the only one and integrated over the shapes of broad
+// daughters. For two sharp daughters of momentum q that is
+// G(m) = G0 (m0/m) (q/q0)^(2L+1) B; broad daughters follow q^(2L+1) B and their own shapes.
+// All broad particles of a decay or reaction are drawn together with its phase space. The
+// shape goes to zero at the lightest stated final state. Where that is heavier than m0, G is
+// G0 one G0 above it, beside a constant width G0 of other decays.
 type LineShape struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
-	// L, 0 to 2. Absent: the lowest that spins and parities allow.
+	// L of a decay to two, 0 to 2. Absent: the lowest that spins and parities allow.
 	AngularMomentum *int32 `protobuf:"varint,1,opt,name=angular_momentum,json=angularMomentum,proto3,oneof" json:"angular_momentum,omitempty"`
 	// Barrier radius of B, in 1/GeV, at least 0; 0 means no barrier factor.
 	RadiusPerGev float64 `protobuf:"fixed64,2,opt,name=radius_per_gev,json=radiusPerGev,proto3" json:"radius_per_gev,omitempty"`
-	// The width does not depend on the mass.
+	// The width in the denominator is G0 at every mass, and L and B do not count: a
+	// Breit-Wigner of constant width times the phase space of the decay.
 	ConstantWidth bool `protobuf:"varint,3,opt,name=constant_width,json=constantWidth,proto3" json:"constant_width,omitempty"`
 	// Lowest mass; 0 means 25 widths below the nominal one. The lightest stated final
 	// state limits it in any case.
@@ -1960,9 +1969,10 @@ type GenerationSummary struct {
 	Efficiency float64 `protobuf:"fixed64,4,opt,name=efficiency,proto3" json:"efficiency,omitempty"`
 	// Number of unweighted events of the same statistical power, (sum w)^2 / sum w^2.
 	EffectiveEventCount float64 `protobuf:"fixed64,5,opt,name=effective_event_count,json=effectiveEventCount,proto3" json:"effective_event_count,omitempty"`
-	// Events above the unweighting bound.
+	// Events above the unweighting bound or the bound of a decay's Dalitz polynomial, which
+	// carry the excess as a weight.
 	OverflowCount int64 `protobuf:"varint,6,opt,name=overflow_count,json=overflowCount,proto3" json:"overflow_count,omitempty"`
-	// Largest weight among them; 0 without any.
+	// Largest excess among them; 0 without any.
 	LargestWeight float64 `protobuf:"fixed64,7,opt,name=largest_weight,json=largestWeight,proto3" json:"largest_weight,omitempty"`
 	// Events given up after 100,000 draws, of weight 0.
 	ExhaustedCount int64 `protobuf:"varint,8,opt,name=exhausted_count,json=exhaustedCount,proto3" json:"exhausted_count,omitempty"`
