@@ -17,7 +17,7 @@ import kinegate
 if TYPE_CHECKING:
     from collections.abc import Iterator
 
-HERE = Path(__file__).parent
+ROOT = Path(__file__).parent.parent.parent
 
 
 @pytest.fixture(scope="session")
@@ -37,7 +37,7 @@ def client(server: kinegate.LocalServer) -> Iterator[kinegate.Client]:
 @pytest.fixture
 def testdata() -> Path:
     """The folder of data that the project did not make, and of selections."""
-    return HERE.parent.parent / "testdata"
+    return ROOT / "testdata"
 
 
 def fitted() -> dict[str, Any]:
@@ -60,9 +60,9 @@ def examples(
     doctest_namespace: dict[str, Any],
     monkeypatch: pytest.MonkeyPatch,
 ) -> Iterator[None]:
-    """What documented examples take for granted: a client, a fit, and the package's own folder."""
+    """What documented examples take for granted: a client, a fit, and the root of the clone."""
     if request.node.__class__.__name__ == "DoctestItem":
-        monkeypatch.chdir(HERE)
+        monkeypatch.chdir(ROOT)
         doctest_namespace["kinegate"] = kinegate
         doctest_namespace["np"] = np
         doctest_namespace.update(fitted())

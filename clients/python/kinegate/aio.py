@@ -228,11 +228,11 @@ class AsyncClient:
 class AsyncJudgeStream:
     """An asynchronous iterator of (block, verdict) pairs in the order of the blocks.
 
-    >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv")
+    >>> sample = kinegate.Events.read_csv("testdata/open/dimuon_2011A.csv")
     >>> async def judge():
     ...     async with kinegate.connect_async(
     ...         server.address, gate_address=server.gate_address) as client:
-    ...         stream = client.judge(sample, "../../testdata/selections/dimuon.yaml")
+    ...         stream = client.judge(sample, "testdata/selections/dimuon.yaml")
     ...         return [int(verdict.gate.sum()) async for block, verdict in stream]
     >>> import asyncio
     >>> asyncio.run(judge())

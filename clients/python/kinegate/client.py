@@ -175,7 +175,7 @@ class Client:
         Raises:
             SelectionFaulty: The selection has faults, all of which the exception holds.
 
-        >>> chosen = client.selection("../../testdata/selections/dimuon.yaml")
+        >>> chosen = client.selection("testdata/selections/dimuon.yaml")
         >>> chosen.hypotheses["dimuon"].observables
         ['M']
         """
@@ -222,7 +222,7 @@ class Client:
         >>> events = kinegate.Events.of(
         ...     px_gev=[[30.0, -30.0]], py_gev=[[2.0, 1.0]], pz_gev=[[5.0, 9.0]],
         ...     mass_gev=[[0.1056584, 0.1056584]], classes=[kinegate.POSITIVE, kinegate.NEGATIVE])
-        >>> verdict = client.judge_block(events, "../../testdata/selections/dimuon.yaml")
+        >>> verdict = client.judge_block(events, "testdata/selections/dimuon.yaml")
         >>> verdict.observable("dimuon", "M").values
         array([60.1...])
         """
@@ -240,8 +240,8 @@ class Client:
             event: Place of the event in the sample.
             most: Most assignments to list for a hypothesis, at most 1,000; 0 for 100.
 
-        >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv")
-        >>> why = client.explain(sample, "../../testdata/selections/dimuon.yaml", event=1)
+        >>> sample = kinegate.Events.read_csv("testdata/open/dimuon_2011A.csv")
+        >>> why = client.explain(sample, "testdata/selections/dimuon.yaml", event=1)
         >>> why.hypotheses["equal-plus"].accepted
         False
         """
@@ -340,8 +340,8 @@ class Client:
             settings: Any of :class:`kinegate.JudgeSettings`: `entries`, `events_per_block`,
                 `latency_budget`, `late`, `follow`, `first_sequence`, `patience`, `progress`.
 
-        >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv")
-        >>> with client.judge(sample, "../../testdata/selections/dimuon.yaml") as stream:
+        >>> sample = kinegate.Events.read_csv("testdata/open/dimuon_2011A.csv")
+        >>> with client.judge(sample, "testdata/selections/dimuon.yaml") as stream:
         ...     for block, verdict in stream:
         ...         print(len(block), verdict.gate.sum())
         1000 1000

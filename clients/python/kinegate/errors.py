@@ -101,8 +101,8 @@ def shortened(value: object) -> str:
 class StreamBroken(KinegateError):
     """A judge stream broke and could not be resumed, or its server broke the protocol.
 
-    >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv")
-    >>> chosen = client.selection("../../testdata/selections/dimuon.yaml")
+    >>> sample = kinegate.Events.read_csv("testdata/open/dimuon_2011A.csv")
+    >>> chosen = client.selection("testdata/selections/dimuon.yaml")
     >>> with kinegate.connect("127.0.0.1:1") as nobody:
     ...     list(nobody.judge(sample, chosen, patience=0.1))
     Traceback (most recent call last):
@@ -246,10 +246,10 @@ class Internal(ServerError):
 class BlockRejected(InvalidArgument):
     """A block of events is structurally unsound; the stream goes on after it.
 
-    >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv").cut(0, 10)
+    >>> sample = kinegate.Events.read_csv("testdata/open/dimuon_2011A.csv").cut(0, 10)
     >>> sample.offsets.flags.writeable = True
     >>> sample.offsets[5] = 1  # an event would have fewer than no objects
-    >>> next(client.judge(sample, "../../testdata/selections/dimuon.yaml"))
+    >>> next(client.judge(sample, "testdata/selections/dimuon.yaml"))
     Traceback (most recent call last):
     kinegate.errors.BlockRejected: block 0 was rejected: ...
     """
@@ -258,7 +258,7 @@ class BlockRejected(InvalidArgument):
 class SelectionFaulty(InvalidArgument):
     """A selection has faults; `violations` holds all of them.
 
-    >>> client.selection("../../testdata/selections/faulty.yaml")
+    >>> client.selection("testdata/selections/faulty.yaml")
     Traceback (most recent call last):
     kinegate.errors.SelectionFaulty: the selection has 3 faults: ...
     """

@@ -69,7 +69,7 @@ class Events:
 
     A slice of events is again events and shares their columns.
 
-    >>> kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv")
+    >>> kinegate.Events.read_csv("testdata/open/dimuon_2011A.csv")
     <3000 events, 6000 objects in momentum_mass, with species_mask>
     """
 
@@ -201,7 +201,7 @@ class Events:
         Run and Event; anything else travels along in `extra`. The mass of each lepton
         follows from its PID; without, the tracks are muons.
 
-        >>> Events.read_csv("../../testdata/open/dimuon_2011A.csv").extra["M"][:2]
+        >>> Events.read_csv("testdata/open/dimuon_2011A.csv").extra["M"][:2]
         array([89.9557, 88.6081])
         """
         return cls.of(**csvfile.read(path))
@@ -227,7 +227,7 @@ class Events:
     def cut(self, start: int, stop: int) -> Self:
         """Return the events from start up to, not including, stop; columns are shared.
 
-        >>> Events.read_csv("../../testdata/open/dimuon_2011A.csv").cut(5, 8)
+        >>> Events.read_csv("testdata/open/dimuon_2011A.csv").cut(5, 8)
         <3 events, 6 objects in momentum_mass, with species_mask>
         """
         start, stop = integer("start", start), integer("stop", stop)
@@ -260,7 +260,7 @@ class Events:
             events_per_block: Most events a block.
             candidates_per_block: Most beam candidates a block, unless one event has more.
 
-        >>> sample = Events.read_csv("../../testdata/open/dimuon_2011A.csv")
+        >>> sample = Events.read_csv("testdata/open/dimuon_2011A.csv")
         >>> [len(block) for block in sample.blocks(1300)]
         [1300, 1300, 400]
         """
@@ -279,7 +279,7 @@ class Events:
     def to_message(self, sequence: int = 0) -> event_pb2.EventBlock:
         """Make the message of one block.
 
-        >>> sample = Events.read_csv("../../testdata/open/dimuon_2011A.csv").cut(0, 10)
+        >>> sample = Events.read_csv("testdata/open/dimuon_2011A.csv").cut(0, 10)
         >>> back = Events.from_message(sample.to_message())
         >>> bool((back["px_gev"] == sample["px_gev"]).all())
         True
@@ -341,7 +341,7 @@ class Events:
     def concatenate(cls, samples: Sequence[Events]) -> Self:
         """Join samples of the same coordinate set into one.
 
-        >>> sample = Events.read_csv("../../testdata/open/dimuon_2011A.csv")
+        >>> sample = Events.read_csv("testdata/open/dimuon_2011A.csv")
         >>> len(Events.concatenate(list(sample.blocks(700))))
         3000
         """
@@ -375,7 +375,7 @@ class Events:
     def to_pandas(self) -> Any:
         """Return a pandas DataFrame of the objects, indexed by event id and object.
 
-        >>> Events.read_csv("../../testdata/open/dimuon_2011A.csv").to_pandas().shape
+        >>> Events.read_csv("testdata/open/dimuon_2011A.csv").to_pandas().shape
         (6000, 5)
         """
         return frames.events_to_pandas(self)
@@ -385,7 +385,7 @@ class Events:
 
         The lists view the columns without a copy. All optional columns and `extra` go along.
 
-        >>> sample = Events.read_csv("../../testdata/open/dimuon_2011A.csv")
+        >>> sample = Events.read_csv("testdata/open/dimuon_2011A.csv")
         >>> len(Events.from_arrow(sample.to_arrow()))
         3000
         """

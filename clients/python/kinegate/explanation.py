@@ -21,8 +21,8 @@ _SHOWN = 5  # assignments in a table
 class WindowExplanation:
     """One window on one assignment, in the unit of its observable.
 
-    >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv")
-    >>> why = client.explain(sample, "../../testdata/selections/dimuon.yaml")
+    >>> sample = kinegate.Events.read_csv("testdata/open/dimuon_2011A.csv")
+    >>> why = client.explain(sample, "testdata/selections/dimuon.yaml")
     >>> why.hypotheses["Z"].best.windows[0]
     WindowExplanation(path='condition.all_of[0].window', ... unit='GeV', value=89.95...)
     """
@@ -168,8 +168,8 @@ class Assignment:
 class HypothesisExplanation:
     """What one hypothesis made of the event.
 
-    >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv")
-    >>> why = client.explain(sample, "../../testdata/selections/dimuon.yaml")
+    >>> sample = kinegate.Events.read_csv("testdata/open/dimuon_2011A.csv")
+    >>> why = client.explain(sample, "testdata/selections/dimuon.yaml")
     >>> why.hypotheses["dimuon"].accepted, why.hypotheses["equal-plus"].obstacle
     (True, '...')
     """
@@ -222,8 +222,8 @@ class HypothesisExplanation:
 class Explanation(Answer[explanation_pb2.ExplainVerdictResponse]):
     """The verdict on one event laid open; it is that of a judge stream to the last bit.
 
-    >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv")
-    >>> why = client.explain(sample, "../../testdata/selections/dimuon.yaml", event=7)
+    >>> sample = kinegate.Events.read_csv("testdata/open/dimuon_2011A.csv")
+    >>> why = client.explain(sample, "testdata/selections/dimuon.yaml", event=7)
     >>> why.gate, [name for name, h in why.hypotheses.items() if h.accepted]
     (True, ['dimuon', ...])
     """

@@ -44,8 +44,8 @@ class JudgeSettings(TypedDict, total=False):
     """The keyword arguments of a judge stream.
 
     >>> settings: kinegate.JudgeSettings = {"entries": "none", "events_per_block": 4096}
-    >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv")
-    >>> len(list(client.judge(sample, "../../testdata/selections/dimuon.yaml", **settings)))
+    >>> sample = kinegate.Events.read_csv("testdata/open/dimuon_2011A.csv")
+    >>> len(list(client.judge(sample, "testdata/selections/dimuon.yaml", **settings)))
     1
     """
 

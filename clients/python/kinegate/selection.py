@@ -30,7 +30,7 @@ _ENTRIES: Final = ("none", "accepted", "all")
 class Hypothesis:
     """How the server understood one hypothesis.
 
-    >>> client.selection("../../testdata/selections/dimuon.yaml").hypotheses["Z"].products
+    >>> client.selection("testdata/selections/dimuon.yaml").hypotheses["Z"].products
     ['mu+', 'mu-']
     """
 
@@ -50,7 +50,7 @@ class Hypothesis:
 class Selection:
     """A selection that a server has checked, or the name of one that it knows.
 
-    >>> chosen = client.selection("../../testdata/selections/dimuon.yaml")
+    >>> chosen = client.selection("testdata/selections/dimuon.yaml")
     >>> list(chosen.hypotheses), len(chosen.digest)
     (['dimuon', 'Z', 'equal-plus', 'equal-minus'], 64)
     """
@@ -114,7 +114,7 @@ SelectionLike = str | Path | Mapping[str, Any] | selection_pb2.Selection | Selec
 class SelectionCheck(Check[selection_pb2.CheckSelectionResponse]):
     """The result of a check: faults, or a digest and the hypotheses as understood.
 
-    >>> client.check("../../testdata/selections/dimuon.yaml").hypotheses["Z"].reaction
+    >>> client.check("testdata/selections/dimuon.yaml").hypotheses["Z"].reaction
     '-> mu+ mu-'
     """
 
@@ -148,7 +148,7 @@ def check(source: SelectionLike) -> Question[SelectionCheck]:
     Args:
         source: A YAML file or its text, a mapping in the same form, or a message.
 
-    >>> for fault in client.check("../../testdata/selections/faulty.yaml").faults:
+    >>> for fault in client.check("testdata/selections/faulty.yaml").faults:
     ...     print(fault.field)
     2:7: name
     5:5: hypotheses[0].reaction

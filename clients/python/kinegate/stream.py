@@ -38,8 +38,8 @@ class JudgeStream:
 
     `Client.judge` makes it. Leaving the loop early, or the `with` block, ends the stream.
 
-    >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv")
-    >>> selection = "../../testdata/selections/dimuon.yaml"
+    >>> sample = kinegate.Events.read_csv("testdata/open/dimuon_2011A.csv")
+    >>> selection = "testdata/selections/dimuon.yaml"
     >>> stream = client.judge(sample, selection, events_per_block=1500)
     >>> [int(verdict.gate.sum()) for block, verdict in stream], stream.reconnects
     ([1500, 1500], 0)

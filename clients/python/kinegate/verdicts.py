@@ -39,8 +39,8 @@ class Entries:
 
     Columns of shape (entries,) unless said otherwise; most of them view the reply.
 
-    >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv").cut(0, 100)
-    >>> entries = client.judge_block(sample, "../../testdata/selections/dimuon.yaml").entries
+    >>> sample = kinegate.Events.read_csv("testdata/open/dimuon_2011A.csv").cut(0, 100)
+    >>> entries = client.judge_block(sample, "testdata/selections/dimuon.yaml").entries
     >>> entries.offsets[:3], entries.accepted.all()
     (array([0, 2, 4], dtype=int32), ...True...)
     """
@@ -90,8 +90,8 @@ class Entries:
 class Observable:
     """A recorded observable: one value for each entry of a hypothesis.
 
-    >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv").cut(0, 100)
-    >>> verdict = client.judge_block(sample, "../../testdata/selections/dimuon.yaml")
+    >>> sample = kinegate.Events.read_csv("testdata/open/dimuon_2011A.csv").cut(0, 100)
+    >>> verdict = client.judge_block(sample, "testdata/selections/dimuon.yaml")
     >>> mass = verdict.observable("Z", "M")
     >>> bool((mass.values >= 80).all()), len(mass.values) == len(mass.weights)
     (True, True)
@@ -144,8 +144,8 @@ class Fits:
 class Verdicts:
     """The verdicts on events; columns of shape (events,).
 
-    >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv").cut(0, 100)
-    >>> verdict = client.judge_block(sample, "../../testdata/selections/dimuon.yaml")
+    >>> sample = kinegate.Events.read_csv("testdata/open/dimuon_2011A.csv").cut(0, 100)
+    >>> verdict = client.judge_block(sample, "testdata/selections/dimuon.yaml")
     >>> len(verdict), verdict.accepted["dimuon"].sum()
     (100, ...100...)
     """
@@ -222,8 +222,8 @@ class Verdicts:
     def concatenate(cls, parts: Sequence[Verdicts]) -> Self:
         """Join the verdicts on blocks into those on the sample.
 
-        >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv")
-        >>> stream = client.judge(sample, "../../testdata/selections/dimuon.yaml")
+        >>> sample = kinegate.Events.read_csv("testdata/open/dimuon_2011A.csv")
+        >>> stream = client.judge(sample, "testdata/selections/dimuon.yaml")
         >>> int(Verdicts.concatenate([v for block, v in stream]).accepted["Z"].sum())
         2316
         """
@@ -270,8 +270,8 @@ class Verdicts:
     def observable(self, hypothesis: str, label: str) -> Observable:
         """Return a recorded observable of a hypothesis, one value for each entry.
 
-        >>> sample = kinegate.Events.read_csv("../../testdata/open/dimuon_2011A.csv").cut(0, 100)
-        >>> verdict = client.judge_block(sample, "../../testdata/selections/dimuon.yaml")
+        >>> sample = kinegate.Events.read_csv("testdata/open/dimuon_2011A.csv").cut(0, 100)
+        >>> verdict = client.judge_block(sample, "testdata/selections/dimuon.yaml")
         >>> mass = verdict.observable("dimuon", "M")
         >>> bool(abs(mass.values / sample.extra["M"][mass.events] - 1).max() < 1e-4)
         True
