@@ -16,6 +16,8 @@ type Measured struct {
 	Objects []Object
 	// Beam are its tagged beam candidates; nil where the block has no beam columns.
 	Beam []BeamCandidate
+	// Weight is that of a simulated event; 1 where the block states none.
+	Weight float64
 }
 
 var errNoCoordinates = errors.New("the block has no coordinate set")
@@ -42,12 +44,20 @@ func ReadEvents(block *kinegatev1.EventBlock) (Coordinates, []Measured, error) {
 		r.length(len(species), rows)
 	}
 	beamOffsets, beam := r.beam(block.GetBeam(), len(ids))
+	var weights []float64
+	if m := block.GetWeight(); m != nil {
+		weights = r.numbers(m.GetWeights())
+		r.length(len(weights), len(ids))
+	}
 	if r.err != nil {
 		return coordinates, nil, r.err
 	}
 	events := make([]Measured, len(ids))
 	for i, id := range ids {
-		e := Measured{ID: id}
+		e := Measured{ID: id, Weight: 1}
+		if weights != nil {
+			e.Weight = weights[i]
+		}
 		for row := offsets[i]; row < offsets[i+1]; row++ {
 			o := Object{Class: kinegatev1.ObjectClass(block.GetObjectClasses()[row])}
 			for k, v := range values {

@@ -65,6 +65,10 @@ func eventBlock(m *kinegatev1.EventBlock, c *columns) (*event.Block, error) {
 			Circular: c.float64s("polarisation.circular_degree", x.GetCircularDegree()),
 		}
 	}
+	if x := m.GetWeight(); x != nil && len(x.GetWeights()) != len(m.GetEventIds()) { // eight bytes each
+		c.faults = append(c.faults, fault.New(fault.Invalid, "weight.weights.length", strconv.Itoa(len(x.GetWeights()))+" bytes",
+			strconv.Itoa(len(m.GetEventIds()))+" bytes"))
+	}
 	if err := c.faults.Err(); err != nil {
 		return nil, err
 	}

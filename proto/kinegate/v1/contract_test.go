@@ -161,6 +161,7 @@ var withoutUnit = map[string]string{
 	"VerdictBlock.statuses":                         "uint8 statuses",
 	"VertexGroupColumns.groups":                     "int32 numbers of groups",
 	"VertexGroupColumns.offsets":                    "int32 rows",
+	"WeightColumn.weights":                          "float64 weights",
 	"WindowExplanation.above_min":                   "in the unit that stands beside it",
 	"WindowExplanation.below_max":                   "in the unit that stands beside it",
 	"WindowExplanation.uncertainty":                 "in the unit that stands beside it",

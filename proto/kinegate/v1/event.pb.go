@@ -129,7 +129,10 @@ type EventBlock struct {
 	// Calorimeter cluster positions; absent means not known.
 	ClusterPosition *ClusterPositionColumns `protobuf:"bytes,17,opt,name=cluster_position,json=clusterPosition,proto3" json:"cluster_position,omitempty"`
 	// Polarisation of the beam photon; absent means unpolarised.
-	Polarisation  *PolarisationColumns `protobuf:"bytes,18,opt,name=polarisation,proto3" json:"polarisation,omitempty"`
+	Polarisation *PolarisationColumns `protobuf:"bytes,18,opt,name=polarisation,proto3" json:"polarisation,omitempty"`
+	// Weights of simulated events; absent means 1 each. Judging leaves them alone:
+	// who adds up verdicts multiplies with them.
+	Weight        *WeightColumn `protobuf:"bytes,19,opt,name=weight,proto3" json:"weight,omitempty"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
 }
@@ -303,6 +306,13 @@ func (x *EventBlock) GetClusterPosition() *ClusterPositionColumns {
 func (x *EventBlock) GetPolarisation() *PolarisationColumns {
 	if x != nil {
 		return x.Polarisation
+	}
+	return nil
+}
+
+func (x *EventBlock) GetWeight() *WeightColumn {
+	if x != nil {
+		return x.Weight
 	}
 	return nil
 }
@@ -1210,11 +1220,57 @@ func (x *PolarisationColumns) GetCircularDegree() []byte {
 	return nil
 }
 
+// WeightColumn holds the weight of each event.
+type WeightColumn struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// One float64 per event, finite; 0 for an event that counts nothing.
+	Weights       []byte `protobuf:"bytes,1,opt,name=weights,proto3" json:"weights,omitempty"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
+}
+
+func (x *WeightColumn) Reset() {
+	*x = WeightColumn{}
+	mi := &file_kinegate_v1_event_proto_msgTypes[14]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *WeightColumn) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*WeightColumn) ProtoMessage() {}
+
+func (x *WeightColumn) ProtoReflect() protoreflect.Message {
+	mi := &file_kinegate_v1_event_proto_msgTypes[14]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use WeightColumn.ProtoReflect.Descriptor instead.
+func (*WeightColumn) Descriptor() ([]byte, []int) {
+	return file_kinegate_v1_event_proto_rawDescGZIP(), []int{14}
+}
+
+func (x *WeightColumn) GetWeights() []byte {
+	if x != nil {
+		return x.Weights
+	}
+	return nil
+}
+
 var File_kinegate_v1_event_proto protoreflect.FileDescriptor
 
 const file_kinegate_v1_event_proto_rawDesc = "" +
 	"\n" +
-	"\x17kinegate/v1/event.proto\x12\vkinegate.v1\"\xd6\b\n" +
+	"\x17kinegate/v1/event.proto\x12\vkinegate.v1\"\x89\t\n" +
 	"\n" +
 	"EventBlock\x12\x1a\n" +
 	"\bsequence\x18\x01 \x01(\x03R\bsequence\x12\x1b\n" +
@@ -1238,7 +1294,8 @@ const file_kinegate_v1_event_proto_rawDesc = "" +
 	"\x06vertex\x18\x0f \x01(\v2\x1a.kinegate.v1.VertexColumnsR\x06vertex\x12B\n" +
 	"\fvertex_group\x18\x10 \x01(\v2\x1f.kinegate.v1.VertexGroupColumnsR\vvertexGroup\x12N\n" +
 	"\x10cluster_position\x18\x11 \x01(\v2#.kinegate.v1.ClusterPositionColumnsR\x0fclusterPosition\x12D\n" +
-	"\fpolarisation\x18\x12 \x01(\v2 .kinegate.v1.PolarisationColumnsR\fpolarisationB\r\n" +
+	"\fpolarisation\x18\x12 \x01(\v2 .kinegate.v1.PolarisationColumnsR\fpolarisation\x121\n" +
+	"\x06weight\x18\x13 \x01(\v2\x19.kinegate.v1.WeightColumnR\x06weightB\r\n" +
 	"\vcoordinates\"{\n" +
 	"\x15EnergyMomentumColumns\x12\x1d\n" +
 	"\n" +
@@ -1297,7 +1354,9 @@ const file_kinegate_v1_event_proto_rawDesc = "" +
 	"\x13PolarisationColumns\x12#\n" +
 	"\rlinear_degree\x18\x01 \x01(\fR\flinearDegree\x12\x1b\n" +
 	"\tplane_rad\x18\x02 \x01(\fR\bplaneRad\x12'\n" +
-	"\x0fcircular_degree\x18\x03 \x01(\fR\x0ecircularDegree*\x94\x01\n" +
+	"\x0fcircular_degree\x18\x03 \x01(\fR\x0ecircularDegree\"(\n" +
+	"\fWeightColumn\x12\x18\n" +
+	"\aweights\x18\x01 \x01(\fR\aweights*\x94\x01\n" +
 	"\vObjectClass\x12\x1c\n" +
 	"\x18OBJECT_CLASS_UNSPECIFIED\x10\x00\x12\x17\n" +
 	"\x13OBJECT_CLASS_PHOTON\x10\x01\x12\x19\n" +
@@ -1318,7 +1377,7 @@ func file_kinegate_v1_event_proto_rawDescGZIP() []byte {
 }
 
 var file_kinegate_v1_event_proto_enumTypes = make([]protoimpl.EnumInfo, 1)
-var file_kinegate_v1_event_proto_msgTypes = make([]protoimpl.MessageInfo, 14)
+var file_kinegate_v1_event_proto_msgTypes = make([]protoimpl.MessageInfo, 15)
 var file_kinegate_v1_event_proto_goTypes = []any{
 	(ObjectClass)(0),                  // 0: kinegate.v1.ObjectClass
 	(*EventBlock)(nil),                // 1: kinegate.v1.EventBlock
@@ -1335,6 +1394,7 @@ var file_kinegate_v1_event_proto_goTypes = []any{
 	(*VertexGroupColumns)(nil),        // 12: kinegate.v1.VertexGroupColumns
 	(*ClusterPositionColumns)(nil),    // 13: kinegate.v1.ClusterPositionColumns
 	(*PolarisationColumns)(nil),       // 14: kinegate.v1.PolarisationColumns
+	(*WeightColumn)(nil),              // 15: kinegate.v1.WeightColumn
 }
 var file_kinegate_v1_event_proto_depIdxs = []int32{
 	2,  // 0: kinegate.v1.EventBlock.energy_momentum:type_name -> kinegate.v1.EnergyMomentumColumns
@@ -1350,11 +1410,12 @@ var file_kinegate_v1_event_proto_depIdxs = []int32{
 	12, // 10: kinegate.v1.EventBlock.vertex_group:type_name -> kinegate.v1.VertexGroupColumns
 	13, // 11: kinegate.v1.EventBlock.cluster_position:type_name -> kinegate.v1.ClusterPositionColumns
 	14, // 12: kinegate.v1.EventBlock.polarisation:type_name -> kinegate.v1.PolarisationColumns
-	13, // [13:13] is the sub-list for method output_type
-	13, // [13:13] is the sub-list for method input_type
-	13, // [13:13] is the sub-list for extension type_name
-	13, // [13:13] is the sub-list for extension extendee
-	0,  // [0:13] is the sub-list for field type_name
+	15, // 13: kinegate.v1.EventBlock.weight:type_name -> kinegate.v1.WeightColumn
+	14, // [14:14] is the sub-list for method output_type
+	14, // [14:14] is the sub-list for method input_type
+	14, // [14:14] is the sub-list for extension type_name
+	14, // [14:14] is the sub-list for extension extendee
+	0,  // [0:14] is the sub-list for field type_name
 }
 
 func init() { file_kinegate_v1_event_proto_init() }
@@ -1377,7 +1438,7 @@ func file_kinegate_v1_event_proto_init() {
 			GoPackagePath: reflect.TypeOf(x{}).PkgPath(),
 			RawDescriptor: unsafe.Slice(unsafe.StringData(file_kinegate_v1_event_proto_rawDesc), len(file_kinegate_v1_event_proto_rawDesc)),
 			NumEnums:      1,
-			NumMessages:   14,
+			NumMessages:   15,
 			NumExtensions: 0,
 			NumServices:   0,
 		},

@@ -5,6 +5,7 @@ import (
 	"errors"
 	"os"
 	"path/filepath"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -12,6 +13,7 @@ import (
 
 	kinegate "example.org/kinegate/clients/go"
 	"example.org/kinegate/kinematics/particle"
+	"example.org/kinegate/proto/column"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 	"example.org/kinegate/service/cmd/kinegate/internal/eventfile"
 	"example.org/kinegate/service/cmd/kinegate/internal/parquet"
@@ -165,8 +167,21 @@ func (s *blockSink) add(_ *kinegatev1.GenerationHeader, block *kinegatev1.Genera
 		}
 		m = b.Take()
 	}
+	m.Weight = weightsOf(events)
 	_, err := protodelim.MarshalTo(s.buffer, m)
 	return err
+}
+
+// weightsOf is the column of the weights of events; nil where all are 1.
+func weightsOf(events []simulated) *kinegatev1.WeightColumn {
+	if !slices.ContainsFunc(events, func(e simulated) bool { return e.weight != 1 }) {
+		return nil
+	}
+	weights := make([]float64, len(events))
+	for i := range events {
+		weights[i] = events[i].weight
+	}
+	return &kinegatev1.WeightColumn{Weights: column.Float64(weights)}
 }
 
 func (s *blockSink) finish() error { return s.close() }

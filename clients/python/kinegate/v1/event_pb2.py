@@ -24,7 +24,7 @@ _sym_db = _symbol_database.Default()
 
 
 
-DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n\x17kinegate/v1/event.proto\x12\x0bkinegate.v1\"\xe6\x06\n\nEventBlock\x12\x10\n\x08sequence\x18\x01 \x01(\x03\x12\x11\n\tevent_ids\x18\x02 \x01(\x0c\x12\x12\n\nrun_number\x18\x03 \x01(\x03\x12\x16\n\x0eobject_offsets\x18\x04 \x01(\x0c\x12=\n\x0f\x65nergy_momentum\x18\x05 \x01(\x0b\x32\".kinegate.v1.EnergyMomentumColumnsH\x00\x12\x39\n\rmomentum_mass\x18\x06 \x01(\x0b\x32 .kinegate.v1.MomentumMassColumnsH\x00\x12\x45\n\x13transverse_momentum\x18\x07 \x01(\x0b\x32&.kinegate.v1.TransverseMomentumColumnsH\x00\x12=\n\x0fmomentum_angles\x18\x08 \x01(\x0b\x32\".kinegate.v1.MomentumAnglesColumnsH\x00\x12=\n\x0fmomentum_slopes\x18\t \x01(\x0b\x32\".kinegate.v1.MomentumSlopesColumnsH\x00\x12\x16\n\x0eobject_classes\x18\n \x01(\x0c\x12\x36\n\rmeasured_mask\x18\x0b \x01(\x0b\x32\x1f.kinegate.v1.MeasuredMaskColumn\x12\x34\n\x0cspecies_mask\x18\x0c \x01(\x0b\x32\x1e.kinegate.v1.SpeciesMaskColumn\x12\x31\n\ncovariance\x18\r \x01(\x0b\x32\x1d.kinegate.v1.CovarianceColumn\x12&\n\x04\x62\x65\x61m\x18\x0e \x01(\x0b\x32\x18.kinegate.v1.BeamColumns\x12*\n\x06vertex\x18\x0f \x01(\x0b\x32\x1a.kinegate.v1.VertexColumns\x12\x35\n\x0cvertex_group\x18\x10 \x01(\x0b\x32\x1f.kinegate.v1.VertexGroupColumns\x12=\n\x10\x63luster_position\x18\x11 \x01(\x0b\x32#.kinegate.v1.ClusterPositionColumns\x12\x36\n\x0cpolarisation\x18\x12 \x01(\x0b\x32 .kinegate.v1.PolarisationColumnsB\r\n\x0b\x63oordinates\"[\n\x15\x45nergyMomentumColumns\x12\x12\n\nenergy_gev\x18\x01 \x01(\x0c\x12\x0e\n\x06px_gev\x18\x02 \x01(\x0c\x12\x0e\n\x06py_gev\x18\x03 \x01(\x0c\x12\x0e\n\x06pz_gev\x18\x04 \x01(\x0c\"W\n\x13MomentumMassColumns\x12\x0e\n\x06px_gev\x18\x01 \x01(\x0c\x12\x0e\n\x06py_gev\x18\x02 \x01(\x0c\x12\x0e\n\x06pz_gev\x18\x03 \x01(\x0c\x12\x10\n\x08mass_gev\x18\x04 \x01(\x0c\"w\n\x19TransverseMomentumColumns\x12\x1f\n\x17transverse_momentum_gev\x18\x01 \x01(\x0c\x12\x16\n\x0epseudorapidity\x18\x02 \x01(\x0c\x12\x0f\n\x07phi_rad\x18\x03 \x01(\x0c\x12\x10\n\x08mass_gev\x18\x04 \x01(\x0c\"Q\n\x15MomentumAnglesColumns\x12\x14\n\x0cmomentum_gev\x18\x01 \x01(\x0c\x12\x11\n\ttheta_rad\x18\x02 \x01(\x0c\x12\x0f\n\x07phi_rad\x18\x03 \x01(\x0c\"O\n\x15MomentumSlopesColumns\x12\x14\n\x0cmomentum_gev\x18\x01 \x01(\x0c\x12\x0f\n\x07slope_x\x18\x02 \x01(\x0c\x12\x0f\n\x07slope_y\x18\x03 \x01(\x0c\"#\n\x12MeasuredMaskColumn\x12\r\n\x05masks\x18\x01 \x01(\x0c\"\"\n\x11SpeciesMaskColumn\x12\r\n\x05masks\x18\x01 \x01(\x0c\"$\n\x10\x43ovarianceColumn\x12\x10\n\x08\x65lements\x18\x01 \x01(\x0c\"V\n\x0b\x42\x65\x61mColumns\x12\x0f\n\x07offsets\x18\x01 \x01(\x0c\x12\x12\n\nenergy_gev\x18\x02 \x01(\x0c\x12\x11\n\tsigma_gev\x18\x03 \x01(\x0c\x12\x0f\n\x07time_ns\x18\x04 \x01(\x0c\"d\n\rVertexColumns\x12\x0b\n\x03x_m\x18\x01 \x01(\x0c\x12\x0b\n\x03y_m\x18\x02 \x01(\x0c\x12\x0b\n\x03z_m\x18\x03 \x01(\x0c\x12\x1a\n\rcovariance_m2\x18\x04 \x01(\x0cH\x00\x88\x01\x01\x42\x10\n\x0e_covariance_m2\"\x8a\x01\n\x12VertexGroupColumns\x12\x0e\n\x06groups\x18\x01 \x01(\x0c\x12\x0f\n\x07offsets\x18\x02 \x01(\x0c\x12\x0b\n\x03x_m\x18\x03 \x01(\x0c\x12\x0b\n\x03y_m\x18\x04 \x01(\x0c\x12\x0b\n\x03z_m\x18\x05 \x01(\x0c\x12\x1a\n\rcovariance_m2\x18\x06 \x01(\x0cH\x00\x88\x01\x01\x42\x10\n\x0e_covariance_m2\"?\n\x16\x43lusterPositionColumns\x12\x0b\n\x03x_m\x18\x01 \x01(\x0c\x12\x0b\n\x03y_m\x18\x02 \x01(\x0c\x12\x0b\n\x03z_m\x18\x03 \x01(\x0c\"X\n\x13PolarisationColumns\x12\x15\n\rlinear_degree\x18\x01 \x01(\x0c\x12\x11\n\tplane_rad\x18\x02 \x01(\x0c\x12\x17\n\x0f\x63ircular_degree\x18\x03 \x01(\x0c*\x94\x01\n\x0bObjectClass\x12\x1c\n\x18OBJECT_CLASS_UNSPECIFIED\x10\x00\x12\x17\n\x13OBJECT_CLASS_PHOTON\x10\x01\x12\x19\n\x15OBJECT_CLASS_POSITIVE\x10\x02\x12\x19\n\x15OBJECT_CLASS_NEGATIVE\x10\x03\x12\x18\n\x14OBJECT_CLASS_NEUTRAL\x10\x04\x42\x33Z1example.org/kinegate/proto/kinegate/v1;kinegatev1b\x06proto3')
+DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n\x17kinegate/v1/event.proto\x12\x0bkinegate.v1\"\x91\x07\n\nEventBlock\x12\x10\n\x08sequence\x18\x01 \x01(\x03\x12\x11\n\tevent_ids\x18\x02 \x01(\x0c\x12\x12\n\nrun_number\x18\x03 \x01(\x03\x12\x16\n\x0eobject_offsets\x18\x04 \x01(\x0c\x12=\n\x0f\x65nergy_momentum\x18\x05 \x01(\x0b\x32\".kinegate.v1.EnergyMomentumColumnsH\x00\x12\x39\n\rmomentum_mass\x18\x06 \x01(\x0b\x32 .kinegate.v1.MomentumMassColumnsH\x00\x12\x45\n\x13transverse_momentum\x18\x07 \x01(\x0b\x32&.kinegate.v1.TransverseMomentumColumnsH\x00\x12=\n\x0fmomentum_angles\x18\x08 \x01(\x0b\x32\".kinegate.v1.MomentumAnglesColumnsH\x00\x12=\n\x0fmomentum_slopes\x18\t \x01(\x0b\x32\".kinegate.v1.MomentumSlopesColumnsH\x00\x12\x16\n\x0eobject_classes\x18\n \x01(\x0c\x12\x36\n\rmeasured_mask\x18\x0b \x01(\x0b\x32\x1f.kinegate.v1.MeasuredMaskColumn\x12\x34\n\x0cspecies_mask\x18\x0c \x01(\x0b\x32\x1e.kinegate.v1.SpeciesMaskColumn\x12\x31\n\ncovariance\x18\r \x01(\x0b\x32\x1d.kinegate.v1.CovarianceColumn\x12&\n\x04\x62\x65\x61m\x18\x0e \x01(\x0b\x32\x18.kinegate.v1.BeamColumns\x12*\n\x06vertex\x18\x0f \x01(\x0b\x32\x1a.kinegate.v1.VertexColumns\x12\x35\n\x0cvertex_group\x18\x10 \x01(\x0b\x32\x1f.kinegate.v1.VertexGroupColumns\x12=\n\x10\x63luster_position\x18\x11 \x01(\x0b\x32#.kinegate.v1.ClusterPositionColumns\x12\x36\n\x0cpolarisation\x18\x12 \x01(\x0b\x32 .kinegate.v1.PolarisationColumns\x12)\n\x06weight\x18\x13 \x01(\x0b\x32\x19.kinegate.v1.WeightColumnB\r\n\x0b\x63oordinates\"[\n\x15\x45nergyMomentumColumns\x12\x12\n\nenergy_gev\x18\x01 \x01(\x0c\x12\x0e\n\x06px_gev\x18\x02 \x01(\x0c\x12\x0e\n\x06py_gev\x18\x03 \x01(\x0c\x12\x0e\n\x06pz_gev\x18\x04 \x01(\x0c\"W\n\x13MomentumMassColumns\x12\x0e\n\x06px_gev\x18\x01 \x01(\x0c\x12\x0e\n\x06py_gev\x18\x02 \x01(\x0c\x12\x0e\n\x06pz_gev\x18\x03 \x01(\x0c\x12\x10\n\x08mass_gev\x18\x04 \x01(\x0c\"w\n\x19TransverseMomentumColumns\x12\x1f\n\x17transverse_momentum_gev\x18\x01 \x01(\x0c\x12\x16\n\x0epseudorapidity\x18\x02 \x01(\x0c\x12\x0f\n\x07phi_rad\x18\x03 \x01(\x0c\x12\x10\n\x08mass_gev\x18\x04 \x01(\x0c\"Q\n\x15MomentumAnglesColumns\x12\x14\n\x0cmomentum_gev\x18\x01 \x01(\x0c\x12\x11\n\ttheta_rad\x18\x02 \x01(\x0c\x12\x0f\n\x07phi_rad\x18\x03 \x01(\x0c\"O\n\x15MomentumSlopesColumns\x12\x14\n\x0cmomentum_gev\x18\x01 \x01(\x0c\x12\x0f\n\x07slope_x\x18\x02 \x01(\x0c\x12\x0f\n\x07slope_y\x18\x03 \x01(\x0c\"#\n\x12MeasuredMaskColumn\x12\r\n\x05masks\x18\x01 \x01(\x0c\"\"\n\x11SpeciesMaskColumn\x12\r\n\x05masks\x18\x01 \x01(\x0c\"$\n\x10\x43ovarianceColumn\x12\x10\n\x08\x65lements\x18\x01 \x01(\x0c\"V\n\x0b\x42\x65\x61mColumns\x12\x0f\n\x07offsets\x18\x01 \x01(\x0c\x12\x12\n\nenergy_gev\x18\x02 \x01(\x0c\x12\x11\n\tsigma_gev\x18\x03 \x01(\x0c\x12\x0f\n\x07time_ns\x18\x04 \x01(\x0c\"d\n\rVertexColumns\x12\x0b\n\x03x_m\x18\x01 \x01(\x0c\x12\x0b\n\x03y_m\x18\x02 \x01(\x0c\x12\x0b\n\x03z_m\x18\x03 \x01(\x0c\x12\x1a\n\rcovariance_m2\x18\x04 \x01(\x0cH\x00\x88\x01\x01\x42\x10\n\x0e_covariance_m2\"\x8a\x01\n\x12VertexGroupColumns\x12\x0e\n\x06groups\x18\x01 \x01(\x0c\x12\x0f\n\x07offsets\x18\x02 \x01(\x0c\x12\x0b\n\x03x_m\x18\x03 \x01(\x0c\x12\x0b\n\x03y_m\x18\x04 \x01(\x0c\x12\x0b\n\x03z_m\x18\x05 \x01(\x0c\x12\x1a\n\rcovariance_m2\x18\x06 \x01(\x0cH\x00\x88\x01\x01\x42\x10\n\x0e_covariance_m2\"?\n\x16\x43lusterPositionColumns\x12\x0b\n\x03x_m\x18\x01 \x01(\x0c\x12\x0b\n\x03y_m\x18\x02 \x01(\x0c\x12\x0b\n\x03z_m\x18\x03 \x01(\x0c\"X\n\x13PolarisationColumns\x12\x15\n\rlinear_degree\x18\x01 \x01(\x0c\x12\x11\n\tplane_rad\x18\x02 \x01(\x0c\x12\x17\n\x0f\x63ircular_degree\x18\x03 \x01(\x0c\"\x1f\n\x0cWeightColumn\x12\x0f\n\x07weights\x18\x01 \x01(\x0c*\x94\x01\n\x0bObjectClass\x12\x1c\n\x18OBJECT_CLASS_UNSPECIFIED\x10\x00\x12\x17\n\x13OBJECT_CLASS_PHOTON\x10\x01\x12\x19\n\x15OBJECT_CLASS_POSITIVE\x10\x02\x12\x19\n\x15OBJECT_CLASS_NEGATIVE\x10\x03\x12\x18\n\x14OBJECT_CLASS_NEUTRAL\x10\x04\x42\x33Z1example.org/kinegate/proto/kinegate/v1;kinegatev1b\x06proto3')
 
 _globals = globals()
 _builder.BuildMessageAndEnumDescriptors(DESCRIPTOR, _globals)
@@ -32,34 +32,36 @@ _builder.BuildTopDescriptorsAndMessages(DESCRIPTOR, 'kinegate.v1.event_pb2', _gl
 if not _descriptor._USE_C_DESCRIPTORS:
   _globals['DESCRIPTOR']._loaded_options = None
   _globals['DESCRIPTOR']._serialized_options = b'Z1example.org/kinegate/proto/kinegate/v1;kinegatev1'
-  _globals['_OBJECTCLASS']._serialized_start=1978
-  _globals['_OBJECTCLASS']._serialized_end=2126
+  _globals['_OBJECTCLASS']._serialized_start=2054
+  _globals['_OBJECTCLASS']._serialized_end=2202
   _globals['_EVENTBLOCK']._serialized_start=41
-  _globals['_EVENTBLOCK']._serialized_end=911
-  _globals['_ENERGYMOMENTUMCOLUMNS']._serialized_start=913
-  _globals['_ENERGYMOMENTUMCOLUMNS']._serialized_end=1004
-  _globals['_MOMENTUMMASSCOLUMNS']._serialized_start=1006
-  _globals['_MOMENTUMMASSCOLUMNS']._serialized_end=1093
-  _globals['_TRANSVERSEMOMENTUMCOLUMNS']._serialized_start=1095
-  _globals['_TRANSVERSEMOMENTUMCOLUMNS']._serialized_end=1214
-  _globals['_MOMENTUMANGLESCOLUMNS']._serialized_start=1216
-  _globals['_MOMENTUMANGLESCOLUMNS']._serialized_end=1297
-  _globals['_MOMENTUMSLOPESCOLUMNS']._serialized_start=1299
-  _globals['_MOMENTUMSLOPESCOLUMNS']._serialized_end=1378
-  _globals['_MEASUREDMASKCOLUMN']._serialized_start=1380
-  _globals['_MEASUREDMASKCOLUMN']._serialized_end=1415
-  _globals['_SPECIESMASKCOLUMN']._serialized_start=1417
-  _globals['_SPECIESMASKCOLUMN']._serialized_end=1451
-  _globals['_COVARIANCECOLUMN']._serialized_start=1453
-  _globals['_COVARIANCECOLUMN']._serialized_end=1489
-  _globals['_BEAMCOLUMNS']._serialized_start=1491
-  _globals['_BEAMCOLUMNS']._serialized_end=1577
-  _globals['_VERTEXCOLUMNS']._serialized_start=1579
-  _globals['_VERTEXCOLUMNS']._serialized_end=1679
-  _globals['_VERTEXGROUPCOLUMNS']._serialized_start=1682
-  _globals['_VERTEXGROUPCOLUMNS']._serialized_end=1820
-  _globals['_CLUSTERPOSITIONCOLUMNS']._serialized_start=1822
-  _globals['_CLUSTERPOSITIONCOLUMNS']._serialized_end=1885
-  _globals['_POLARISATIONCOLUMNS']._serialized_start=1887
-  _globals['_POLARISATIONCOLUMNS']._serialized_end=1975
+  _globals['_EVENTBLOCK']._serialized_end=954
+  _globals['_ENERGYMOMENTUMCOLUMNS']._serialized_start=956
+  _globals['_ENERGYMOMENTUMCOLUMNS']._serialized_end=1047
+  _globals['_MOMENTUMMASSCOLUMNS']._serialized_start=1049
+  _globals['_MOMENTUMMASSCOLUMNS']._serialized_end=1136
+  _globals['_TRANSVERSEMOMENTUMCOLUMNS']._serialized_start=1138
+  _globals['_TRANSVERSEMOMENTUMCOLUMNS']._serialized_end=1257
+  _globals['_MOMENTUMANGLESCOLUMNS']._serialized_start=1259
+  _globals['_MOMENTUMANGLESCOLUMNS']._serialized_end=1340
+  _globals['_MOMENTUMSLOPESCOLUMNS']._serialized_start=1342
+  _globals['_MOMENTUMSLOPESCOLUMNS']._serialized_end=1421
+  _globals['_MEASUREDMASKCOLUMN']._serialized_start=1423
+  _globals['_MEASUREDMASKCOLUMN']._serialized_end=1458
+  _globals['_SPECIESMASKCOLUMN']._serialized_start=1460
+  _globals['_SPECIESMASKCOLUMN']._serialized_end=1494
+  _globals['_COVARIANCECOLUMN']._serialized_start=1496
+  _globals['_COVARIANCECOLUMN']._serialized_end=1532
+  _globals['_BEAMCOLUMNS']._serialized_start=1534
+  _globals['_BEAMCOLUMNS']._serialized_end=1620
+  _globals['_VERTEXCOLUMNS']._serialized_start=1622
+  _globals['_VERTEXCOLUMNS']._serialized_end=1722
+  _globals['_VERTEXGROUPCOLUMNS']._serialized_start=1725
+  _globals['_VERTEXGROUPCOLUMNS']._serialized_end=1863
+  _globals['_CLUSTERPOSITIONCOLUMNS']._serialized_start=1865
+  _globals['_CLUSTERPOSITIONCOLUMNS']._serialized_end=1928
+  _globals['_POLARISATIONCOLUMNS']._serialized_start=1930
+  _globals['_POLARISATIONCOLUMNS']._serialized_end=2018
+  _globals['_WEIGHTCOLUMN']._serialized_start=2020
+  _globals['_WEIGHTCOLUMN']._serialized_end=2051
 # @@protoc_insertion_point(module_scope)

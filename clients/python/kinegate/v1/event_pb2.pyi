@@ -20,7 +20,7 @@ OBJECT_CLASS_NEGATIVE: ObjectClass
 OBJECT_CLASS_NEUTRAL: ObjectClass
 
 class EventBlock(_message.Message):
-    __slots__ = ("sequence", "event_ids", "run_number", "object_offsets", "energy_momentum", "momentum_mass", "transverse_momentum", "momentum_angles", "momentum_slopes", "object_classes", "measured_mask", "species_mask", "covariance", "beam", "vertex", "vertex_group", "cluster_position", "polarisation")
+    __slots__ = ("sequence", "event_ids", "run_number", "object_offsets", "energy_momentum", "momentum_mass", "transverse_momentum", "momentum_angles", "momentum_slopes", "object_classes", "measured_mask", "species_mask", "covariance", "beam", "vertex", "vertex_group", "cluster_position", "polarisation", "weight")
     SEQUENCE_FIELD_NUMBER: _ClassVar[int]
     EVENT_IDS_FIELD_NUMBER: _ClassVar[int]
     RUN_NUMBER_FIELD_NUMBER: _ClassVar[int]
@@ -39,6 +39,7 @@ class EventBlock(_message.Message):
     VERTEX_GROUP_FIELD_NUMBER: _ClassVar[int]
     CLUSTER_POSITION_FIELD_NUMBER: _ClassVar[int]
     POLARISATION_FIELD_NUMBER: _ClassVar[int]
+    WEIGHT_FIELD_NUMBER: _ClassVar[int]
     sequence: int
     event_ids: bytes
     run_number: int
@@ -57,7 +58,8 @@ class EventBlock(_message.Message):
     vertex_group: VertexGroupColumns
     cluster_position: ClusterPositionColumns
     polarisation: PolarisationColumns
-    def __init__(self, sequence: _Optional[int] = ..., event_ids: _Optional[bytes] = ..., run_number: _Optional[int] = ..., object_offsets: _Optional[bytes] = ..., energy_momentum: _Optional[_Union[EnergyMomentumColumns, _Mapping]] = ..., momentum_mass: _Optional[_Union[MomentumMassColumns, _Mapping]] = ..., transverse_momentum: _Optional[_Union[TransverseMomentumColumns, _Mapping]] = ..., momentum_angles: _Optional[_Union[MomentumAnglesColumns, _Mapping]] = ..., momentum_slopes: _Optional[_Union[MomentumSlopesColumns, _Mapping]] = ..., object_classes: _Optional[bytes] = ..., measured_mask: _Optional[_Union[MeasuredMaskColumn, _Mapping]] = ..., species_mask: _Optional[_Union[SpeciesMaskColumn, _Mapping]] = ..., covariance: _Optional[_Union[CovarianceColumn, _Mapping]] = ..., beam: _Optional[_Union[BeamColumns, _Mapping]] = ..., vertex: _Optional[_Union[VertexColumns, _Mapping]] = ..., vertex_group: _Optional[_Union[VertexGroupColumns, _Mapping]] = ..., cluster_position: _Optional[_Union[ClusterPositionColumns, _Mapping]] = ..., polarisation: _Optional[_Union[PolarisationColumns, _Mapping]] = ...) -> None: ...
+    weight: WeightColumn
+    def __init__(self, sequence: _Optional[int] = ..., event_ids: _Optional[bytes] = ..., run_number: _Optional[int] = ..., object_offsets: _Optional[bytes] = ..., energy_momentum: _Optional[_Union[EnergyMomentumColumns, _Mapping]] = ..., momentum_mass: _Optional[_Union[MomentumMassColumns, _Mapping]] = ..., transverse_momentum: _Optional[_Union[TransverseMomentumColumns, _Mapping]] = ..., momentum_angles: _Optional[_Union[MomentumAnglesColumns, _Mapping]] = ..., momentum_slopes: _Optional[_Union[MomentumSlopesColumns, _Mapping]] = ..., object_classes: _Optional[bytes] = ..., measured_mask: _Optional[_Union[MeasuredMaskColumn, _Mapping]] = ..., species_mask: _Optional[_Union[SpeciesMaskColumn, _Mapping]] = ..., covariance: _Optional[_Union[CovarianceColumn, _Mapping]] = ..., beam: _Optional[_Union[BeamColumns, _Mapping]] = ..., vertex: _Optional[_Union[VertexColumns, _Mapping]] = ..., vertex_group: _Optional[_Union[VertexGroupColumns, _Mapping]] = ..., cluster_position: _Optional[_Union[ClusterPositionColumns, _Mapping]] = ..., polarisation: _Optional[_Union[PolarisationColumns, _Mapping]] = ..., weight: _Optional[_Union[WeightColumn, _Mapping]] = ...) -> None: ...
 
 class EnergyMomentumColumns(_message.Message):
     __slots__ = ("energy_gev", "px_gev", "py_gev", "pz_gev")
@@ -192,3 +194,9 @@ class PolarisationColumns(_message.Message):
     plane_rad: bytes
     circular_degree: bytes
     def __init__(self, linear_degree: _Optional[bytes] = ..., plane_rad: _Optional[bytes] = ..., circular_degree: _Optional[bytes] = ...) -> None: ...
+
+class WeightColumn(_message.Message):
+    __slots__ = ("weights",)
+    WEIGHTS_FIELD_NUMBER: _ClassVar[int]
+    weights: bytes
+    def __init__(self, weights: _Optional[bytes] = ...) -> None: ...

@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"math"
 
 	"google.golang.org/protobuf/encoding/protodelim"
 
@@ -45,7 +46,13 @@ func (r *BlockReader) Next() (*kinegatev1.EventBlock, []Event, error) {
 	}
 	events := make([]Event, len(measured))
 	for i, m := range measured {
-		events[i] = Event{Run: block.GetRunNumber(), ID: m.ID, Objects: m.Objects, Beam: m.Beam}
+		if math.IsNaN(m.Weight) || math.IsInf(m.Weight, 0) {
+			return nil, nil, fmt.Errorf("block %d, event %d: the weight is not finite", r.count, m.ID)
+		}
+		events[i] = Event{
+			Run: block.GetRunNumber(), ID: m.ID, Objects: m.Objects, Beam: m.Beam,
+			Weight: m.Weight, Weighted: block.GetWeight() != nil,
+		}
 	}
 	return block, events, nil
 }

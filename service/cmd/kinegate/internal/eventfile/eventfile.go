@@ -14,6 +14,7 @@
 //	direction1                  1 where only the direction was measured
 //	beam_energy1, beam_sigma1, beam_time1
 //	                            tagged beam candidate 1: GeV, GeV, ns
+//	weight                      weight of a simulated event
 //
 // m1 may be left out: the hypothesis' mass wins unless a selection says
 // mass_from_event. An event with fewer objects leaves the cells of the others
@@ -28,6 +29,7 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"math"
 	"slices"
 	"strconv"
 	"strings"
@@ -40,7 +42,10 @@ import (
 // Event is one line of the file.
 type Event struct {
 	Run, ID int64
-	Objects []kinegate.Object
+	// Weight is 1 where the file states none; Weighted says that it states one.
+	Weight   float64
+	Weighted bool
+	Objects  []kinegate.Object
 	// Beam is nil where the file has no beam columns.
 	Beam []kinegate.BeamCandidate
 	// Other holds the cells of the columns that say nothing about objects.
@@ -110,6 +115,9 @@ func (l *layout) event(record []string, number int64) (Event, error) {
 		return e, err
 	}
 	if e.ID, err = l.whole(record, "event", number); err != nil {
+		return e, err
+	}
+	if e.Weight, e.Weighted, err = l.weight(record); err != nil {
 		return e, err
 	}
 	for _, columns := range l.objects {
@@ -209,6 +217,19 @@ func (l *layout) whole(record []string, name string, missing int64) (int64, erro
 		return 0, fmt.Errorf("column %s: %q is not a whole number", l.header[i], record[i])
 	}
 	return n, nil
+}
+
+// weight reads the weight of an event, 1 where the column does not exist.
+func (l *layout) weight(record []string) (weight float64, stated bool, err error) {
+	i, stated := l.named[weightName]
+	if !stated {
+		return 1, false, nil
+	}
+	weight, err = strconv.ParseFloat(strings.TrimSpace(record[i]), 64)
+	if err != nil || math.IsNaN(weight) || math.IsInf(weight, 0) {
+		return 0, true, fmt.Errorf("column %s: %q is not a finite number", l.header[i], record[i])
+	}
+	return weight, true, nil
 }
 
 // species are the bits of the species mask in their order.

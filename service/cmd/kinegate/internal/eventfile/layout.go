@@ -17,7 +17,7 @@ type layout struct {
 	coordinates kinegate.Coordinates
 	objects     []objectColumns
 	beams       [][3]int
-	named       map[string]int // run and event
+	named       map[string]int // run, event and weight
 	other       map[string]int
 }
 
@@ -53,13 +53,16 @@ var sets = []struct { //nolint:gochecknoglobals // a table that nothing writes
 
 var numberedName = regexp.MustCompile(`^([a-z_]+)([1-9][0-9]?)$`)
 
+// weightName is the column of the weights of simulated events.
+const weightName = "weight"
+
 // newLayout reads the line of names.
 func newLayout(header []string) (layout, error) {
 	l := layout{header: slices.Clone(header), named: map[string]int{}, other: map[string]int{}}
 	groups := map[int]map[string]int{}
 	for i, cell := range header {
 		name := strings.ToLower(strings.TrimSpace(strings.TrimPrefix(cell, "\ufeff")))
-		if name == "run" || name == "event" {
+		if name == "run" || name == "event" || name == weightName {
 			if _, twice := l.named[name]; twice {
 				return l, fmt.Errorf("column %s appears twice", cell)
 			}
