@@ -119,11 +119,11 @@ func TestJudgeWritesVerdicts(t *testing.T) {
 	if err != nil || len(rows) != 3001 {
 		t.Fatalf("%d rows, %v", len(rows), err)
 	}
-	if want := "run,event,status,gate,dimuon,dimuon/M,Z,Z/M"; !strings.HasPrefix(strings.Join(rows[0], ","), want) {
+	if want := "run,event,status,gate,weight,dimuon,dimuon/M,Z,Z/M"; !strings.HasPrefix(strings.Join(rows[0], ","), want) {
 		t.Errorf("heading %v", rows[0])
 	}
 	// The first event of the file, printed mass 89.9557 GeV.
-	if rows[1][1] != "74969122" || rows[1][2] != "judged" || rows[1][3] != "1" || !strings.HasPrefix(rows[1][5], "89.955") {
+	if rows[1][1] != "74969122" || rows[1][2] != "judged" || rows[1][3] != "1" || rows[1][4] != "1" || !strings.HasPrefix(rows[1][6], "89.955") {
 		t.Errorf("first row %v", rows[1])
 	}
 }
@@ -138,7 +138,7 @@ func TestJudgeJSONHasColumnsAsArrays(t *testing.T) {
 	events := 0
 	for decoder.More() {
 		var block struct {
-			EventCount int   `json:"event_count"`
+			EventCount int   `json:"event_count,string"`
 			Statuses   []int `json:"statuses"`
 		}
 		if err := decoder.Decode(&block); err != nil {

@@ -31,10 +31,12 @@ func judgeCommand(p program) *cobra.Command {
 			"first 100 events for each hypothesis that accepts nothing. Columns: run, event; px1, py1,\n" +
 			"pz1, m1 or p1, theta1, phi1 or pt1, eta1, phi1, m1 for each object (GeV, rad); class1\n" +
 			"(photon, positive, negative, neutral), q1 (charge) or pid1 (particle number); beam_energy1,\n" +
-			"beam_sigma1, beam_time1 (GeV, GeV, ns) for each tagged candidate. Other columns are kept for\n" +
-			"--compare.",
+			"beam_sigma1, beam_time1 (GeV, GeV, ns) for each tagged candidate; weight of a simulated event.\n" +
+			"Other columns are kept for --compare. Sums, means and histograms take each accepted entry with\n" +
+			"its weight, that of its event times that of its time window, so that side bands are taken off.",
 		Example: `  kinegate judge --selection dimuon.yaml dimuon_2011A.csv
   kinegate judge --selection dimuon.yaml dimuon_2011A.csv --out verdicts.csv --histogram "dimuon/M=2 GeV:110 GeV:27"
+  kinegate judge --selection pions.yaml events.kgb --out entries.parquet --entries all
   kinegate judge --selection dimuon.yaml dimuon_2011A.csv --compare M=dimuon/M
   kinegate judge --selection dimuon.yaml dimuon_2011A.csv --explain 74969122`,
 		Args: usage(cobra.MinimumNArgs(1)),
@@ -46,7 +48,8 @@ func judgeCommand(p program) *cobra.Command {
 	j.flags(c)
 	f := c.Flags()
 	f.StringVar(&j.selectionFile, "selection", "", "selection file (YAML); required")
-	f.StringVar(&j.outFile, "out", "", "write one line per event with its verdicts to this CSV file")
+	f.StringVar(&j.outFile, "out", "", "write one row per event with its verdicts to this file: .csv or .parquet")
+	f.StringVar(&j.entries, "entries", "", "accepted or all: write one row per entry in place of one per event,\nwith its beam candidate, weights, fit and objects")
 	f.StringArrayVar(&j.compare, "compare", nil, "compare a column with a recorded observable, as COLUMN=NAME/LABEL; NAME is a hypothesis or a group")
 	f.StringArrayVar(&j.histograms, "histogram", nil, `draw a recorded observable, as NAME/LABEL=LOW:HIGH:BINS`)
 	f.StringVar(&j.assume, "assume-resolution", "",
@@ -63,8 +66,10 @@ type judgeRun struct {
 	*environment
 
 	selectionFile, outFile, gateAddress string
-	compare, histograms                 []string
-	blockEvents                         int
+	// entries says which entries --out has rows of; empty for rows of events.
+	entries             string
+	compare, histograms []string
+	blockEvents         int
 
 	assume      string
 	explaining  bool
@@ -84,6 +89,10 @@ func (j *judgeRun) run(ctx context.Context, files []string) error {
 	}
 	if j.blockEvents < 1 || j.blockEvents > 4096 {
 		return badInput("--block-events %d: 1 to 4096 are allowed", j.blockEvents)
+	}
+	detail, err := j.detail()
+	if err != nil {
+		return err
 	}
 	yaml, err := os.ReadFile(j.selectionFile)
 	if err != nil {
@@ -114,14 +123,14 @@ func (j *judgeRun) run(ctx context.Context, files []string) error {
 	progress := text.NewProgress(j.err, j.terminal, "judging", source.size())
 	open := &kinegatev1.JudgeOpen{
 		Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Given{Given: j.checked.GetSelection()}},
-		Entries:   kinegatev1.EntryDetail_ENTRY_DETAIL_ACCEPTED,
+		Entries:   detail,
 		Limits: &kinegatev1.Limits{
 			BlockEventCount: int64(j.blockEvents), BlockCandidateCount: int64(candidatesPerEvent * j.blockEvents),
 		},
 	}
 	start := time.Now()
 	err = pump(ctx, gate, open, next, func(b *batch[eventfile.Event], v *kinegate.Verdicts) error {
-		sums.add(v)
+		sums.add(b.events, v)
 		why.keep(b.block, len(b.events))
 		progress.Set(source.read.Load())
 		if err := j.tell(v.Block, nil); err != nil || j.json && j.outFile == "" {
@@ -145,6 +154,19 @@ func (j *judgeRun) run(ctx context.Context, files []string) error {
 		}
 	}
 	return j.report(sums, why, sinks, elapsed)
+}
+
+// detail is which entries are asked for: summaries need those that are accepted.
+func (j *judgeRun) detail() (kinegatev1.EntryDetail, error) {
+	switch {
+	case j.entries != "" && j.outFile == "" && !j.json:
+		return 0, badInput("--entries says what --out and --json have; give one of them")
+	case j.entries == "all":
+		return kinegatev1.EntryDetail_ENTRY_DETAIL_ALL, nil
+	case j.entries == "" || j.entries == "accepted":
+		return kinegatev1.EntryDetail_ENTRY_DETAIL_ACCEPTED, nil
+	}
+	return 0, badInput("--entries %q: accepted or all", j.entries)
 }
 
 // blocks returns what gives the blocks of the files, with the resolution that is assumed.

@@ -107,12 +107,6 @@ func (e *environment) printAssignment(
 	h *kinegatev1.HypothesisExplanation, condition *kinegatev1.Condition, i int, a *kinegatev1.AssignmentExplanation,
 ) error {
 	e.print("")
-	var objects []string
-	for k, object := range a.GetObjects() {
-		if object >= 0 {
-			objects = append(objects, fmt.Sprintf("%s=%d", h.GetProducts()[k], object))
-		}
-	}
 	outcome := "fails"
 	switch {
 	case a.GetPassed():
@@ -130,8 +124,8 @@ func (e *environment) printAssignment(
 		outcome += fmt.Sprintf("; beam candidate %d with weight %g", a.GetBeamRow(), a.GetWeight())
 	}
 	e.print("  assignment %d: %s", i+1, outcome)
-	if len(objects) > 0 {
-		e.print("    objects %s", strings.Join(objects, " "))
+	if objects := objectsText(h.GetProducts(), a.GetObjects()); objects != "" {
+		e.print("    objects %s", objects)
 	}
 	if why := unmet(condition, a); why != "" {
 		e.print("    %s", why)
@@ -172,7 +166,7 @@ func (e *environment) printFit(h *kinegatev1.HypothesisExplanation, f *kinegatev
 	if f.Probability != nil {
 		line += ", probability " + figure(f.GetProbability())
 	}
-	e.print("%s, %s", line, plural(int64(f.GetIterationCount()), "step"))
+	e.print("%s, %s", line, plural(f.GetIterationCount(), "step"))
 	if f.VertexZM != nil {
 		e.print("    vertex z %s +- %s m", figure(f.GetVertexZM()), optionalFigure(f.VertexZSigmaM))
 	}

@@ -36,7 +36,7 @@ func TestJudgeExplain(t *testing.T) {
 		{judgePions + " --explain 0", exitWell, "the rule on extra objects forbids the difference"},
 		{judgePions + " --explain 999", exitUsage, "no event 999"},
 		{judgePions + " --explain 4 --assignments 0", exitUsage, "1 to 1000"},
-		{judgePions + ` --histogram "two-pions/M=0 GeV:2 GeV:4"`, exitWell, "each counted once whatever its weight"},
+		{judgePions + ` --histogram "two-pions/M=0 GeV:2 GeV:4"`, exitWell, "two-pions/M: accepted entries\n"},
 		{"judge --selection " + leptonsFit + " " + leptonsEvents + ` --assume-resolution "1.5 %:1 mrad" --explain 34442568`, exitWell, "mass of mu+[0] mu-[0]"},
 		{"judge --selection " + leptonsFit + " " + leptonsEvents + " --explain 34442568", exitUsage, "state them with --assume-resolution"},
 		{"judge --selection " + leptonsFit + " " + leptonsEvents, exitUsage, "state them with --assume-resolution"},

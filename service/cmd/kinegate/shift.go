@@ -55,7 +55,7 @@ func newShift(selection *kinegatev1.CheckSelectionResponse, events []hall.Event)
 // add counts a block.
 func (s *shift) add(b *batch[hall.Event], v *kinegate.Verdicts) {
 	s.latency = append(s.latency, time.Since(b.sent))
-	s.tally.add(v)
+	s.tally.add(nil, v)
 	for i, e := range b.events {
 		if v.Gate(i) {
 			s.gate[e.Channel]++

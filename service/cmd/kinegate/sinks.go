@@ -1,11 +1,10 @@
 package main
 
 import (
-	"encoding/csv"
 	"errors"
 	"fmt"
 	"math"
-	"os"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -27,7 +26,7 @@ type sink interface {
 func (j *judgeRun) sinks() ([]sink, error) {
 	var sinks []sink
 	if j.outFile != "" {
-		s, err := newVerdictFile(j.outFile, j.checked.GetHypotheses())
+		s, err := j.newVerdictFile()
 		if err != nil {
 			return nil, err
 		}
@@ -99,88 +98,27 @@ func (j *judgeRun) recorded(text string) (recorded, error) {
 	return r, nil
 }
 
+// entries are the accepted entries of event i that the name means.
+func (r *recorded) entries(v *kinegate.Verdicts, i int) []kinegate.Entry {
+	return slices.DeleteFunc(v.Entries(i), func(e kinegate.Entry) bool {
+		wanted := r.index[e.Hypothesis] >= 0 && (r.group < 0 || int(v.Best[r.group][i]) == e.Hypothesis)
+		return !wanted || e.Status != kinegatev1.EntryStatus_ENTRY_STATUS_ACCEPTED
+	})
+}
+
+// of is the observable in one of these entries.
+func (r *recorded) of(e *kinegate.Entry) float64 { return e.Observables[r.index[e.Hypothesis]] }
+
 // value is the observable of event i: of the accepted entry with the largest weight.
 func (r *recorded) value(v *kinegate.Verdicts, i int) (float64, bool) {
-	best := kinegate.Entry{Hypothesis: -1, Weight: math.Inf(-1)}
-	for _, e := range v.Entries(i) {
-		wanted := r.index[e.Hypothesis] >= 0 && (r.group < 0 || int(v.Best[r.group][i]) == e.Hypothesis)
-		if wanted && e.Status == kinegatev1.EntryStatus_ENTRY_STATUS_ACCEPTED && e.Weight > best.Weight {
-			best = e
+	best, weight := math.NaN(), math.Inf(-1)
+	entries := r.entries(v, i)
+	for k := range entries {
+		if e := &entries[k]; e.Weight > weight {
+			best, weight = r.of(e), e.Weight
 		}
 	}
-	if best.Hypothesis < 0 {
-		return 0, false
-	}
-	return best.Observables[r.index[best.Hypothesis]], true
-}
-
-// verdictFile writes one line per event.
-type verdictFile struct {
-	file    *os.File
-	csv     *csv.Writer
-	outline []*kinegatev1.HypothesisOutline
-	lines   int
-}
-
-func newVerdictFile(name string, outline []*kinegatev1.HypothesisOutline) (*verdictFile, error) {
-	file, err := os.Create(name)
-	if err != nil {
-		return nil, badInput("--out: %w", err)
-	}
-	heading := []string{"run", "event", "status", "gate"}
-	for _, h := range outline {
-		heading = append(heading, h.GetName())
-		for _, o := range h.GetObservables() {
-			heading = append(heading, h.GetName()+"/"+o)
-		}
-	}
-	f := &verdictFile{file: file, csv: csv.NewWriter(file), outline: outline}
-	return f, f.csv.Write(heading)
-}
-
-func (f *verdictFile) add(events []eventfile.Event, v *kinegate.Verdicts) error {
-	for i, event := range events {
-		status := strings.ToLower(strings.TrimPrefix(v.Statuses[i].String(), "EVENT_STATUS_"))
-		row := []string{strconv.FormatInt(event.Run, 10), strconv.FormatInt(event.ID, 10), status, digit(v.Gate(i))}
-		for h, o := range f.outline {
-			row = append(row, digit(v.Accepted(h, i)))
-			for k := range o.GetObservables() {
-				r := recorded{group: -1, index: make([]int, len(f.outline))}
-				for other := range r.index {
-					r.index[other] = -1
-				}
-				r.index[h] = k
-				cell := ""
-				if x, ok := r.value(v, i); ok && !math.IsNaN(x) {
-					cell = strconv.FormatFloat(x, 'g', -1, 64)
-				}
-				row = append(row, cell)
-			}
-		}
-		f.lines++
-		if err := f.csv.Write(row); err != nil {
-			return err
-		}
-	}
-	return nil
-}
-
-func digit(b bool) string {
-	if b {
-		return "1"
-	}
-	return "0"
-}
-
-func (f *verdictFile) finish(e *environment) error {
-	f.csv.Flush()
-	if err := errors.Join(f.csv.Error(), f.file.Close()); err != nil {
-		return err
-	}
-	if !e.json {
-		e.print("\n  %d lines written to %s", f.lines, f.file.Name())
-	}
-	return nil
+	return best, len(entries) > 0
 }
 
 // comparison compares a column of the file with what was recorded.
@@ -259,7 +197,12 @@ func (j *judgeRun) histogram(form string) (*histogramSink, error) {
 	}
 	edge := func(x float64) string { return strconv.FormatFloat(x, 'g', 6, 64) }
 	if dimension >= 0 {
-		edge = func(x float64) string { return trimZeros(quantity.Format(x, dimension, 6)) }
+		unit := 1.0
+		if dimension == quantity.Time { // observables have nanoseconds
+			unit = 1e-9
+		}
+		low, high = low/unit, high/unit
+		edge = func(x float64) string { return trimZeros(quantity.Format(x*unit, dimension, 6)) }
 	}
 	return &histogramSink{recorded: r, histogram: text.NewHistogram(bins, low, high), edge: edge}, nil
 }
@@ -284,8 +227,9 @@ func edgeValue(s string) (float64, quantity.Dimension, error) {
 
 func (h *histogramSink) add(events []eventfile.Event, v *kinegate.Verdicts) error {
 	for i := range events {
-		if x, ok := h.recorded.value(v, i); ok {
-			h.histogram.Add(x, 1)
+		entries := h.recorded.entries(v, i)
+		for k := range entries {
+			h.histogram.Add(h.recorded.of(&entries[k]), events[i].Weight*entries[k].Weight)
 		}
 	}
 	return nil
@@ -293,5 +237,9 @@ func (h *histogramSink) add(events []eventfile.Event, v *kinegate.Verdicts) erro
 
 func (h *histogramSink) finish(e *environment) error {
 	e.print("")
-	return h.histogram.Write(e.out, h.recorded.name+": accepted events, each counted once whatever its weight", h.edge)
+	title := h.recorded.name + ": accepted entries"
+	if h.histogram.Weighted {
+		title += " with their weights, so that side bands are taken off"
+	}
+	return h.histogram.Write(e.out, title, h.edge)
 }

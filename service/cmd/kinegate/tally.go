@@ -6,6 +6,7 @@ import (
 
 	kinegate "example.org/kinegate/clients/go"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
+	"example.org/kinegate/service/cmd/kinegate/internal/eventfile"
 	"example.org/kinegate/service/cmd/kinegate/internal/text"
 )
 
@@ -15,15 +16,28 @@ type tally struct {
 	events     int
 	gate       int
 	statuses   map[kinegatev1.EventStatus]int
-	accepted   []int     // by hypothesis
-	weighted   []float64 // sum of the weights of the accepted entries
-	spreads    [][]spread
+	accepted   []int // by hypothesis
 	blockCount int
+
+	// stated tells that files state weights of their events: all is their sum, through that of
+	// the events that the gate accepts, and taken that of those that each hypothesis does.
+	stated       bool
+	empty        int // events of weight 0
+	all, through weightSum
+	taken        []weightSum
+	// weighted are the accepted entries by hypothesis, each with its weight: that of its event
+	// times that of its time window. plain tells that all of these are 1.
+	weighted []weightSum
+	plain    bool
+	spreads  [][]spread
 }
 
-// spread is the range and mean of an observable.
+// spread is the range and the weighted mean of an observable.
 type spread struct {
-	count, sum, low, high float64
+	count     int
+	weights   weightSum
+	products  float64 // of weight and value
+	low, high float64
 }
 
 func newTally(outline []*kinegatev1.HypothesisOutline) *tally {
@@ -31,7 +45,9 @@ func newTally(outline []*kinegatev1.HypothesisOutline) *tally {
 		outline:  outline,
 		statuses: map[kinegatev1.EventStatus]int{},
 		accepted: make([]int, len(outline)),
-		weighted: make([]float64, len(outline)),
+		taken:    make([]weightSum, len(outline)),
+		weighted: make([]weightSum, len(outline)),
+		plain:    true,
 		spreads:  make([][]spread, len(outline)),
 	}
 	for h, o := range outline {
@@ -43,47 +59,68 @@ func newTally(outline []*kinegatev1.HypothesisOutline) *tally {
 	return t
 }
 
-// add counts a block.
-func (t *tally) add(v *kinegate.Verdicts) {
+// add counts a block of events, which may be nil where no file states weights.
+func (t *tally) add(events []eventfile.Event, v *kinegate.Verdicts) {
 	t.blockCount++
 	for i, status := range v.Statuses {
 		t.events++
 		t.statuses[status]++
+		weight := eventWeight(events, i)
+		t.stated = t.stated || i < len(events) && events[i].Weighted
+		t.all.add(weight)
+		if weight == 0 {
+			t.empty++
+		}
 		if v.Gate(i) {
 			t.gate++
+			t.through.add(weight)
 		}
 		for h := range t.outline {
 			if v.Accepted(h, i) {
 				t.accepted[h]++
+				t.taken[h].add(weight)
 			}
 		}
 		for _, e := range v.Entries(i) {
 			if e.Status != kinegatev1.EntryStatus_ENTRY_STATUS_ACCEPTED {
 				continue
 			}
-			t.weighted[e.Hypothesis] += e.Weight
+			whole := weight * e.Weight
+			t.plain = t.plain && whole == 1
+			t.weighted[e.Hypothesis].add(whole)
 			for k, x := range e.Observables {
-				t.spreads[e.Hypothesis][k].add(x)
+				t.spreads[e.Hypothesis][k].add(x, whole)
 			}
 		}
 	}
 }
 
-func (s *spread) add(x float64) {
+func (s *spread) add(x, weight float64) {
 	if math.IsNaN(x) {
 		return
 	}
 	s.count++
-	s.sum += x
+	s.weights.add(weight)
+	s.products += weight * x
 	s.low, s.high = min(s.low, x), max(s.high, x)
 }
 
-func share(part, whole int) string {
-	if whole == 0 {
+// mean is the weighted mean; there is none where the weights add up to nothing.
+func (s *spread) mean() string {
+	if !(s.weights.sum > 0) {
+		return "-"
+	}
+	return fmt.Sprintf("%.6g", s.products/s.weights.sum)
+}
+
+func share(part, whole int) string { return portion(float64(part), float64(whole)) }
+
+func portion(part, whole float64) string {
+	if !(whole > 0) {
 		return "-"
 	}
 	const percent = 100
-	return fmt.Sprintf("%.2f %%", percent*float64(part)/float64(whole))
+	return fmt.Sprintf("%.2f %%", percent*part/whole)
 }
 
 // endings say in words how events ended that were not judged, or not to the end.
@@ -108,26 +145,50 @@ func (t *tally) write(e *environment) error {
 			e.print("  %s %s", plural(int64(n), "event"), ending.words)
 		}
 	}
-	e.print("")
-	table := text.NewTable("hypothesis", ">accepted", ">share", ">weighted", "reaction")
-	for h, o := range t.outline {
-		table.Row(o.GetName(), fmt.Sprint(t.accepted[h]), share(t.accepted[h], t.events),
-			trimZeros(fmt.Sprintf("%.2f", t.weighted[h])), o.GetReaction())
+	if t.stated {
+		e.print("  the files state weights: %s for all events, %s for those that the gate accepts (%s); %s of weight 0",
+			t.all.text(), t.through.text(), portion(t.through.sum, t.all.sum), plural(int64(t.empty), "event"))
 	}
-	if err := table.Write(e.out); err != nil {
+	e.print("")
+	if err := t.writeHypotheses(e); err != nil {
 		return err
 	}
-	return t.writeSpreads(e)
+	if err := t.writeSpreads(e); err != nil || t.plain && !t.stated {
+		return err
+	}
+	e.print("")
+	e.print("  weighted: accepted entries with their weights, so that side bands are taken off;")
+	e.print("  +-: the root of the sum of the squares of the weights")
+	if t.stated {
+		e.print("  share: by the weights of the events")
+	}
+	return nil
+}
+
+func (t *tally) writeHypotheses(e *environment) error {
+	table := text.NewTable("hypothesis", ">accepted", ">share", ">weighted", ">+-", "reaction")
+	for h, o := range t.outline {
+		sum, spread := t.weighted[h].cells()
+		accepted := share(t.accepted[h], t.events)
+		if t.stated {
+			accepted = portion(t.taken[h].sum, t.all.sum)
+		}
+		table.Row(o.GetName(), fmt.Sprint(t.accepted[h]), accepted, sum, spread, o.GetReaction())
+	}
+	return table.Write(e.out)
 }
 
 // writeSpreads prints mean and range of what the accepted entries record.
 func (t *tally) writeSpreads(e *environment) error {
-	table := text.NewTable("recorded", ">entries", ">mean", ">lowest", ">highest")
+	mean := ">mean"
+	if !t.plain {
+		mean = ">weighted mean"
+	}
+	table := text.NewTable("recorded", ">entries", mean, ">lowest", ">highest")
 	for h, o := range t.outline {
 		for i, name := range o.GetObservables() {
 			if s := t.spreads[h][i]; s.count > 0 {
-				table.Row(o.GetName()+"/"+name, fmt.Sprintf("%.0f", s.count),
-					fmt.Sprintf("%.6g", s.sum/s.count), fmt.Sprintf("%.6g", s.low), fmt.Sprintf("%.6g", s.high))
+				table.Row(o.GetName()+"/"+name, fmt.Sprint(s.count), s.mean(), fmt.Sprintf("%.6g", s.low), fmt.Sprintf("%.6g", s.high))
 			}
 		}
 	}

@@ -42,3 +42,25 @@ func TestHistogram(t *testing.T) {
 		t.Errorf("got\n%s", b.String())
 	}
 }
+
+// TestWeightedHistogram: weights that are not 1 show their sums with the roots of the sums of
+// their squares, a sum below zero too, which has no bar.
+func TestWeightedHistogram(t *testing.T) {
+	t.Parallel()
+	h := text.NewHistogram(3, 0, 3)
+	for _, c := range [][2]float64{{0.5, 3}, {0.5, 4}, {1.5, -0.25}, {9, 0.125}} {
+		h.Add(c[0], c[1])
+	}
+	var b strings.Builder
+	if err := h.Write(&b, "x", func(x float64) string { return strconv.FormatFloat(x, 'f', 1, 64) }); err != nil {
+		t.Fatal(err)
+	}
+	blank := strings.Repeat(" ", 48)
+	for _, line := range []string{
+		"  0.0 |" + strings.Repeat("#", 48) + " 7 +- 5\n", "  1.0 |" + blank + " -0.25 +- 0.25\n", "  2.0 |" + blank + " 0\n", "above 0.125,",
+	} {
+		if !strings.Contains(b.String(), line) {
+			t.Errorf("no line %q in\n%s", line, b.String())
+		}
+	}
+}
