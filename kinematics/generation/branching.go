@@ -25,7 +25,8 @@ type BranchingFraction struct {
 
 // BranchingFractions returns the table: a small choice of decays, each with its
 // source. A particle's table holds for the antiparticle with all numbers
-// conjugated. What the table lacks counts as 1; any entry can be overridden.
+// conjugated. What the table lacks is not known and counts as 1, with a remark of
+// ProductsOf; any entry can be overridden.
 func BranchingFractions() ([]BranchingFraction, error) {
 	records, err := csv.NewReader(strings.NewReader(branchingTable)).ReadAll()
 	if err != nil {
@@ -62,7 +63,7 @@ func branchingRow(record []string) (BranchingFraction, error) {
 	return row, err //nolint:wrapcheck // the caller adds the place
 }
 
-// lookUp returns the fraction of a decay, and 1 for one that the table lacks.
+// lookUp returns the fraction of a decay, and 0 for one that the table lacks.
 func lookUp(table []BranchingFraction, parent int64, daughters []int64) float64 {
 	sorted := slices.Clone(daughters)
 	slices.Sort(sorted)
@@ -71,5 +72,5 @@ func lookUp(table []BranchingFraction, parent int64, daughters []int64) float64 
 			return row.Fraction
 		}
 	}
-	return 1
+	return 0
 }

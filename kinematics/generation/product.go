@@ -36,7 +36,8 @@ type Decay struct {
 	// own direction in its parent's rest frame, or in the centre of mass for a
 	// product of the reaction (the helicity frame); nil means isotropic.
 	CosTheta *Curve
-	// Branching is the branching fraction, which weights carry; 0 means 1.
+	// Branching is the branching fraction, which weights carry; 0 means that it is not
+	// known, and counts as 1.
 	Branching float64
 }
 

@@ -1,7 +1,9 @@
 package generation
 
 import (
+	"slices"
 	"strconv"
+	"strings"
 
 	"example.org/kinegate/kinematics/fault"
 	"example.org/kinegate/kinematics/particle"
@@ -31,10 +33,11 @@ type Override struct {
 // parities allow. Decays of muons, taus and neutrons to leptons get their
 // spectra; all others are phase space.
 //
-// The second result names the broad products that no Breit-Wigner describes.
+// The second result is what the caller should know: broad products that no
+// Breit-Wigner describes, and decays whose branching fraction is not known.
 // Faults: an inclusive reaction (Unsupported), an override of a product that is
 // not there or does not decay (NotFound).
-func ProductsOf(r *reaction.Reaction, sharpBelow float64, overrides ...Override) (products []Product, warnings []string, err error) {
+func ProductsOf(r *reaction.Reaction, sharpBelow float64, overrides ...Override) (products []Product, remarks []string, err error) {
 	if r.Inclusive {
 		return nil, nil, fault.New(fault.Unsupported, "reaction", "X", "").In("generation.ProductsOf").
 			Because("an inclusive reaction has no products to generate")
@@ -57,7 +60,7 @@ func ProductsOf(r *reaction.Reaction, sharpBelow float64, overrides ...Override)
 			missing = append(missing, f.In("generation.ProductsOf"))
 		}
 	}
-	return products, m.warnings, missing.Err()
+	return products, m.remarks, missing.Err()
 }
 
 type maker struct {
@@ -66,7 +69,7 @@ type maker struct {
 	sharp     float64
 	overrides []Override
 	used      []bool
-	warnings  []string
+	remarks   []string
 }
 
 func (m *maker) product(i int) Product {
@@ -79,7 +82,7 @@ func (m *maker) product(i int) Product {
 	if !state.Sharp(m.sharp) {
 		made.WidthGeV = state.Width
 		if state.NotBreitWigner != "" {
-			m.warnings = append(m.warnings, p.Name+": "+state.NotBreitWigner)
+			m.remark(p.Name + ": " + state.NotBreitWigner)
 		}
 	}
 	if state.Life == particle.LifeMeanLife {
@@ -93,7 +96,27 @@ func (m *maker) product(i int) Product {
 			o.apply(&made)
 		}
 	}
+	if made.Decay.Branching == 0 {
+		m.remark(m.text(i) + ": its branching fraction is not known and counts as 1")
+	}
 	return made
+}
+
+// remark adds a sentence, once where it holds of several products alike.
+func (m *maker) remark(sentence string) {
+	if !slices.Contains(m.remarks, sentence) {
+		m.remarks = append(m.remarks, sentence)
+	}
+}
+
+// text is the decay of a product.
+func (m *maker) text(i int) string {
+	p := &m.reaction.Products[i]
+	names := make([]string, 0, len(p.Daughters))
+	for _, k := range p.Daughters {
+		names = append(names, m.reaction.Products[k].Particle.Name)
+	}
+	return p.Particle.Name + " -> " + strings.Join(names, " ")
 }
 
 func (o *Override) apply(p *Product) {
@@ -121,7 +144,7 @@ func (m *maker) decay(parent *particle.Particle, daughters []int) *Decay {
 		conjugates = append(conjugates, m.reaction.Products[k].Particle.AntiNumber)
 	}
 	d.Branching = lookUp(m.table, parent.Number, numbers)
-	if d.Branching == 1 && parent.Number != parent.AntiNumber {
+	if d.Branching == 0 && parent.Number != parent.AntiNumber {
 		d.Branching = lookUp(m.table, parent.AntiNumber, conjugates)
 	}
 	d.Density = leptonic(parent.Number, d.Products)

@@ -3,6 +3,8 @@ package generation
 import (
 	"errors"
 	"math"
+	"slices"
+	"strings"
 	"testing"
 
 	"example.org/kinegate/kinematics/fault"
@@ -60,6 +62,40 @@ func TestProductsOf(t *testing.T) {
 	lambda := productsOf(t, "gamma p -> K+ Lambda, Lambda -> p pi-", Override{Product: 1, Branching: 0.5})
 	if lambda[1].Decay.Branching != 0.5 || lambda[1].MeanLifeS == 0 {
 		t.Errorf("Lambda is %+v", lambda[1])
+	}
+}
+
+// A decay that the table lacks is told, once, and not where a fraction is given.
+func TestUnknownFractions(t *testing.T) {
+	for text, want := range map[string][]string{
+		"gamma p -> p omega, omega -> pi0 gamma, pi0 -> gamma gamma": nil,
+		"gamma p -> p rho0, rho0 -> pi+ pi-":                         nil, // 1 as it stands in the table
+		"gamma p -> p rho0, rho0 -> e+ e-":                           {"rho0 -> e+ e-"},
+		"gamma p -> p rho0 rho0, rho0 -> e+ e-":                      {"rho0 -> e+ e-"},
+		"gamma p -> Delta(1232)+ pi0, Delta(1232)+ -> p pi0, pi0 -> gamma gamma": {
+			"Delta+ -> p pi0",
+		},
+	} {
+		products, remarks, err := ProductsOf(parse(t, text), 0)
+		if err != nil {
+			t.Fatal(err)
+		}
+		var unknown []string
+		for _, r := range remarks {
+			if decay, found := strings.CutSuffix(r, ": its branching fraction is not known and counts as 1"); found {
+				unknown = append(unknown, decay)
+			}
+		}
+		if !slices.Equal(unknown, want) {
+			t.Errorf("%s: not known are %q, want %q, of %q", text, unknown, want, remarks)
+		}
+		if b := branching(products); len(want) > 0 && math.Abs(b-math.Pow(0.98823, float64(strings.Count(text, "pi0 -> gamma")*2))) > 1e-15 {
+			t.Errorf("%s: branching %v, with more than the known fractions", text, b)
+		}
+	}
+	_, remarks, err := ProductsOf(parse(t, "gamma p -> p rho0, rho0 -> e+ e-"), 0, Override{Product: 1, Branching: 4.7e-5})
+	if err != nil || len(remarks) > 0 {
+		t.Errorf("with a fraction given: %q, %v", remarks, err)
 	}
 }
 

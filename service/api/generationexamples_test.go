@@ -122,6 +122,32 @@ func TestGenerationExamplesShowEveryField(t *testing.T) {
 	t.Logf("%d fields and values of enums", len(all))
 }
 
+// TestFractionRemark holds that a decay whose branching fraction is not known is told by the check
+// and by the header of the events, and one that is given is not.
+func TestFractionRemark(t *testing.T) {
+	t.Parallel()
+	s := newServices(t)
+	for _, given := range []*float64{nil, new(4.7e-5)} {
+		g := &kinegatev1.Generation{InitialState: tagged(1.6, 2), Channels: reactions("gamma p -> p rho0, rho0 -> e+ e-")}
+		if given != nil {
+			g.Channels[0].Decays = []*kinegatev1.DecayOptions{{Product: "rho0", BranchingFraction: given}}
+		}
+		reply, err := s.generation.CheckGeneration(t.Context(), &kinegatev1.CheckGenerationRequest{
+			Form: &kinegatev1.CheckGenerationRequest_Generation{Generation: g},
+		})
+		if err != nil {
+			t.Fatal(err)
+		}
+		header := mustGenerate(t, s, &kinegatev1.GenerateEventsRequest{Generation: g, EventCount: 1}).frames[0].GetHeader()
+		for _, channels := range [][]*kinegatev1.GenerationOutline{reply.GetChannels(), header.GetChannels()} {
+			remarks := strings.Join(channels[0].GetRemarks(), "; ")
+			if told := strings.Contains(remarks, "rho0 -> e+ e-: its branching fraction is not known and counts as 1"); told != (given == nil) {
+				t.Errorf("fraction %v: remarks %q", given, remarks)
+			}
+		}
+	}
+}
+
 // TestLawRemark holds that a channel which is made isotropic although a law for it exists says
 // so, and no other.
 func TestLawRemark(t *testing.T) {

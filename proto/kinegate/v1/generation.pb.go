@@ -948,7 +948,8 @@ type DecayOptions struct {
 	// Reference of a product that decays, such as "omega" or "pi0[2]".
 	Product string `protobuf:"bytes,1,opt,name=product,proto3" json:"product,omitempty"`
 	// Branching fraction of the stated decay, above 0 and at most 1. Absent: that of the
-	// program's table, and 1 for decays that it does not hold.
+	// program's table. A fraction that the table does not hold is not known: it counts as
+	// 1, and a remark of the channel says so.
 	BranchingFraction *float64 `protobuf:"fixed64,2,opt,name=branching_fraction,json=branchingFraction,proto3,oneof" json:"branching_fraction,omitempty"`
 	// Distribution of the product's mass, where it is not sharp. Absent: a relativistic
 	// Breit-Wigner of the lowest angular momentum that spins and parities allow.
@@ -1763,10 +1764,11 @@ type GenerationOutline struct {
 	// event's truth. A spectator nucleus, where there is one, has the row after them.
 	Products []string `protobuf:"bytes,3,rep,name=products,proto3" json:"products,omitempty"`
 	// Product of the branching fractions of the stated decays. Weights carry it; the
-	// fraction of a mixture does not.
+	// fraction of a mixture does not. Each decay whose fraction is not known counts as 1
+	// in it and has a remark.
 	BranchingFraction float64 `protobuf:"fixed64,4,opt,name=branching_fraction,json=branchingFraction,proto3" json:"branching_fraction,omitempty"`
 	// What is true of it with a reservation, such as a state that no Breit-Wigner
-	// describes.
+	// describes, or a decay whose branching fraction is not known and counts as 1.
 	Remarks       []string `protobuf:"bytes,5,rep,name=remarks,proto3" json:"remarks,omitempty"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache

@@ -71,6 +71,8 @@ func TestGenerate(t *testing.T) {
 		{`generate "gamma p -> p eta" --beam "1 GeV" --events 0 --observable "mass eta"`, exitUsage, "nothing to draw"},
 		{`generate "gamma p -> p eta" --beam "1 GeV" --events 0 --plot /nowhere/a.svg`, exitUsage, "nothing to draw"},
 
+		{`generate "gamma p -> p rho0, rho0 -> e+ e-" --beam "2 GeV" --events 5`, exitWell, "rho0 -> e+ e-: its branching fraction is not known"},
+		{`generate "gamma p -> p rho0, rho0 -> pi+ pi-" --beam "2 GeV" --events 5`, exitWell, "branching fraction    1, "},
 		{`generate "omega -> pi+ pi- pi0" --events 5 --weighted`, exitWell, "of the sample"},
 		{`generate "gamma gamma -> e+ e-" --beam "1 GeV" --beam2 "1 MeV" --angle "90 deg" --events 5`, exitWell, "e-"},
 		{`generate --request ` + generation + ` --detector ` + detector + ` --events 100`, exitWell, "with an object seen"},
