@@ -10,6 +10,7 @@
 // A server has two listeners: one for questions and bulk work, and the gate, whose streams
 // nothing else delays. Judge opens a stream there and keeps the rules of the protocol:
 //
+//   - The opening waits for a server to be there, for JudgeOptions.Opening.
 //   - The queue between Send and Recv is bounded: Send waits while JudgeOptions.Queue blocks
 //     are on their way, so that Recv must go on beside it. On the line are never more blocks
 //     and bytes than the server's credit allows.
@@ -22,6 +23,7 @@
 //     never broke. JudgeOptions.GiveUp bounds the attempts, JudgeOptions.Broken hears of them.
 //   - Events that the server could not judge within the latency budget of the opening are
 //     EXPIRED. JudgeOptions.Late decides on them: AcceptLate, the default, loses none.
+//     JudgeStream.LateCount counts them.
 //
 // A Builder makes blocks of events and ReadVerdicts reads the columns of the answers;
 // ReadEvents takes simulated blocks apart.

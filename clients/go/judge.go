@@ -31,6 +31,9 @@ type JudgeOptions struct {
 	// Queue is how many blocks may be on their way at once, from Send to Recv, over
 	// what the server's credit allows; 0 means twice the credit.
 	Queue int
+	// Opening is the time for the first opening, which waits for a server to be there; 10 s
+	// if 0. Judge then returns an *UnreachableError.
+	Opening time.Duration
 	// Silence is the time without any frame after which a connection is dead; 3 s if 0.
 	// The server sends a heartbeat every second.
 	Silence time.Duration
@@ -47,16 +50,17 @@ type JudgeOptions struct {
 // Times of the protocol and of its resumption.
 const (
 	heartbeatInterval = time.Second
+	defaultOpening    = 10 * time.Second
 	defaultSilence    = 3 * time.Second
 	defaultGiveUp     = time.Minute
 	firstBackoff      = 50 * time.Millisecond
 	lastBackoff       = time.Second
 )
 
-// withDefaults fills in what is 0.
-func (o JudgeOptions) withDefaults(credit int64) JudgeOptions {
-	if o.Queue <= 0 {
-		o.Queue = 2 * int(max(credit, 1))
+// withDefaults fills in what is 0, but for the queue, which the credit decides.
+func (o JudgeOptions) withDefaults() JudgeOptions {
+	if o.Opening <= 0 {
+		o.Opening = defaultOpening
 	}
 	if o.Silence <= 0 {
 		o.Silence = defaultSilence
@@ -96,6 +100,7 @@ type JudgeStream struct {
 	sent   int
 	taking int
 	next   int64 // sequence of the next block
+	late   int64 // events so far
 	closed bool  // by CloseSend
 	ended  bool
 	err    error // why it ended
@@ -114,20 +119,27 @@ type outgoing struct {
 // errSelectionChanged reports a server that judges with something else after a break.
 var errSelectionChanged = errors.New("after the break the server would judge with another selection")
 
-// Judge opens a judge stream. An opening that fails is not tried again. Cancelling ctx
-// ends the stream at once.
+// Judge opens a judge stream. An opening that fails is not tried again; one that nobody
+// answers within JudgeOptions.Opening fails with an *UnreachableError. Cancelling ctx ends
+// the stream at once.
 func (c *Client) Judge(ctx context.Context, open *kinegatev1.JudgeOpen, options JudgeOptions) (*JudgeStream, error) {
+	options = options.withDefaults()
 	ctx, cancel := context.WithCancel(ctx)
-	first, err := c.link(ctx, open, 0)
+	first, err := c.link(ctx, open, options.Opening, true)
 	if err != nil {
 		cancel()
+		if errors.Is(err, errTooLong) {
+			return nil, c.unreachable(err, options.Opening)
+		}
 		return nil, err
+	}
+	if options.Queue <= 0 {
+		options.Queue = 2 * int(max(first.opened.GetCredit().GetBlockCount(), 1))
 	}
 	s := &JudgeStream{
 		Opened: first.opened, client: c, open: proto.CloneOf(open), ctx: ctx, cancel: cancel,
-		options: options.withDefaults(first.opened.GetCredit().GetBlockCount()),
-		over:    make(chan struct{}),
-		next:    open.GetFirstSequence(),
+		options: options, over: make(chan struct{}),
+		next: open.GetFirstSequence(),
 	}
 	s.verdicts = make(chan *kinegatev1.VerdictBlock, s.options.Queue)
 	s.changed.L = &s.mu
@@ -181,6 +193,14 @@ func (s *JudgeStream) Recv() (*kinegatev1.VerdictBlock, error) {
 	s.taking--
 	s.changed.Broadcast()
 	return v, nil
+}
+
+// LateCount is how many events so far were late: answered EXPIRED, and decided on by
+// JudgeOptions.Late. It counts verdicts that came, also where Recv has not fetched them yet.
+func (s *JudgeStream) LateCount() int64 {
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	return s.late
 }
 
 // Close ends the stream at once and waits for its goroutines.
@@ -283,7 +303,7 @@ func (s *JudgeStream) resume(cause error) (*link, error) {
 		open.FirstSequence = s.next - int64(len(s.queue))
 		s.mu.Unlock()
 		var l *link
-		l, err = s.client.link(s.ctx, open, s.options.Silence)
+		l, err = s.client.link(s.ctx, open, s.options.Silence, false)
 		switch {
 		case err == nil && !s.open.GetFollow() && l.opened.GetSelectionDigest() != s.Opened.GetSelectionDigest():
 			l.close()
@@ -309,21 +329,27 @@ func (s *JudgeStream) settle(v *kinegatev1.VerdictBlock) (bytes int64, err error
 	s.sent--
 	s.taking++
 	s.broken = time.Time{}
-	if s.options.Late == AcceptLate {
-		acceptLate(v)
-	}
+	s.late += decideLate(v, s.options.Late == AcceptLate)
 	// The channel has room for the whole queue.
 	s.verdicts <- v
 	s.changed.Broadcast()
 	return bytes, nil
 }
 
-// acceptLate sets the gate bit of every event that was late.
-func acceptLate(v *kinegatev1.VerdictBlock) {
+// decideLate sets the gate bit of every event that was late, and counts them: the bit that
+// came with one is no judgement.
+func decideLate(v *kinegatev1.VerdictBlock, accept bool) (count int64) {
 	const bitsPerByte = 8
 	for i, status := range v.GetStatuses() {
-		if kinegatev1.EventStatus(status) == kinegatev1.EventStatus_EVENT_STATUS_EXPIRED && i/bitsPerByte < len(v.GetGate()) {
-			v.Gate[i/bitsPerByte] |= 1 << (i % bitsPerByte)
+		if kinegatev1.EventStatus(status) != kinegatev1.EventStatus_EVENT_STATUS_EXPIRED || i/bitsPerByte >= len(v.GetGate()) {
+			continue
+		}
+		count++
+		if bit := byte(1) << (i % bitsPerByte); accept {
+			v.Gate[i/bitsPerByte] |= bit
+		} else {
+			v.Gate[i/bitsPerByte] &^= bit
 		}
 	}
+	return count
 }

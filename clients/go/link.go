@@ -47,23 +47,27 @@ type link struct {
 
 var (
 	errSilent   = errors.New("the server was silent")
+	errTooLong  = errors.New("the opening took too long")
 	errStuck    = errors.New("the server is stuck")
 	errDraining = errors.New("the server has left")
 	errProtocol = errors.New("the server broke the protocol of the stream")
 )
 
-// link opens one rpc. A limit above 0 is the time for that.
-func (c *Client) link(ctx context.Context, open *kinegatev1.JudgeOpen, limit time.Duration) (*link, error) {
+// link opens one rpc within a time. Only the first opening of a stream waits for a server to
+// be there: after a break the next address may be better.
+func (c *Client) link(ctx context.Context, open *kinegatev1.JudgeOpen, limit time.Duration, wait bool) (*link, error) {
 	ctx, cancel := context.WithCancelCause(ctx)
 	l := &link{ctx: ctx, cancel: cancel, hangUp: func() {}, start: time.Now()}
 	l.answered.Store(open.GetFirstSequence() - 1)
 	fail := func(err error) (*link, error) {
-		if cause := context.Cause(ctx); cause != nil && errors.Is(cause, errSilent) {
-			err = cause
+		if cause := context.Cause(ctx); errors.Is(cause, errTooLong) {
+			err = fmt.Errorf("%w: %w", cause, err)
 		}
 		l.close()
 		return nil, err
 	}
+	timer := time.AfterFunc(limit, func() { cancel(errTooLong) })
+	defer timer.Stop()
 	selections := c.Selections
 	if c.redial != nil {
 		conn, err := c.redial()
@@ -75,15 +79,8 @@ func (c *Client) link(ctx context.Context, open *kinegatev1.JudgeOpen, limit tim
 		l.hangUp = func() { go func() { _ = conn.Close() }() }
 		selections = kinegatev1.NewSelectionServiceClient(conn)
 	}
-	var options []grpc.CallOption
-	if limit > 0 {
-		// The next address may be better than waiting for this one.
-		options = append(options, grpc.WaitForReady(false))
-		timer := time.AfterFunc(limit, func() { cancel(errSilent) })
-		defer timer.Stop()
-	}
 	var err error
-	if l.stream, err = selections.Judge(ctx, options...); err != nil {
+	if l.stream, err = selections.Judge(ctx, grpc.WaitForReady(wait)); err != nil {
 		return fail(err)
 	}
 	if l.opened, err = l.openStream(open); err != nil {
@@ -289,8 +286,10 @@ func (s *JudgeStream) guard(l *link) {
 // server was silent, stuck or has left, or it said so itself. Whatever else the server
 // answered would be answered again.
 func passing(err error) bool {
-	if errors.Is(err, errSilent) || errors.Is(err, errStuck) || errors.Is(err, errDraining) || errors.Is(err, io.EOF) {
-		return true
+	for _, one := range []error{errSilent, errTooLong, errStuck, errDraining, io.EOF} {
+		if errors.Is(err, one) {
+			return true
+		}
 	}
 	s, ok := status.FromError(err)
 	if !ok {

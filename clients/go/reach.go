@@ -2,7 +2,9 @@ package kinegate
 
 import (
 	"context"
+	"fmt"
 	"strings"
+	"time"
 
 	"google.golang.org/grpc"
 	"google.golang.org/grpc/codes"
@@ -38,6 +40,16 @@ func (c *Client) Reach(ctx context.Context) error {
 		return context.Cause(ctx)
 	}
 	return nil
+}
+
+// unreachable tells why nobody answered an opening in time: how gRPC failed to connect where
+// that is known.
+func (c *Client) unreachable(err error, limit time.Duration) *UnreachableError {
+	reason := fmt.Sprintf("nothing came back in %v", limit)
+	if _, last, found := strings.Cut(err.Error(), "connection error: "); found {
+		reason = plainReason(last)
+	}
+	return &UnreachableError{c.conn.Target(), reason}
 }
 
 // plainReason is the innermost reason of a transport's error, without its frames.

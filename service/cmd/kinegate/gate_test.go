@@ -169,6 +169,42 @@ func TestFrozenServerIsFound(t *testing.T) {
 	}
 }
 
+// TestFrozenServerAtTheOpening: a stream that opens while the server's process is stopped
+// ends within the time of an opening, whether or not its client spoke to the server before,
+// and opens once the process wakes.
+func TestFrozenServerAtTheOpening(t *testing.T) {
+	const opening, slack = time.Second, time.Second
+	s := serveAt(t)
+	known := s.client()
+	open := func(options kinegate.JudgeOptions) {
+		t.Helper()
+		stream, err := known.Judge(t.Context(), history.AllEntries(), options)
+		if err != nil {
+			t.Fatal(err)
+		}
+		stream.Close()
+	}
+	open(kinegate.JudgeOptions{}) // the server is there
+	if err := s.process.Process.Signal(syscall.SIGSTOP); err != nil {
+		t.Fatal(err)
+	}
+	for _, c := range []struct {
+		name   string
+		client *kinegate.Client
+	}{{"known", known}, {"new", s.client()}} {
+		begun := time.Now()
+		_, err := c.client.Judge(t.Context(), history.AllEntries(), kinegate.JudgeOptions{Opening: opening})
+		took := time.Since(begun)
+		if _, ok := errors.AsType[*kinegate.UnreachableError](err); !ok || took < opening || took > opening+slack {
+			t.Errorf("%s: %v after %v", c.name, err, took)
+		}
+	}
+	if err := s.process.Process.Signal(syscall.SIGCONT); err != nil {
+		t.Fatal(err)
+	}
+	open(kinegate.JudgeOptions{})
+}
+
 // resident is the memory of a process in bytes, now or at its most.
 func resident(t *testing.T, pid int, key string) int64 {
 	t.Helper()
