@@ -127,6 +127,9 @@ func TestBreachesAreNamed(t *testing.T) {
 		{"draining", "draining", faulty{ignoresDraining: true}},
 		{"heartbeat", "heartbeat", faulty{neverBeats: true}},
 		{"late-accept", "late policy", faulty{leavesLate: true}},
+		// It waits for ever.
+		{"silence", "silence", faulty{}},
+		{"stuck", "stuck", faulty{}},
 	} {
 		t.Run(c.script+" "+c.faulty.name(), func(t *testing.T) {
 			t.Parallel()

@@ -3,7 +3,6 @@ package conformance
 import (
 	"errors"
 	"fmt"
-	"io"
 	"sync"
 	"time"
 
@@ -193,15 +192,19 @@ func (c *connection) expectEnd(s *Step) error {
 	}
 }
 
-// quiet waits while no block may come.
+// quiet waits while no block may come and the client may not leave; it may end its sending.
 func (c *connection) quiet(s *Step) error {
 	timer := time.NewTimer(time.Duration(s.QuietS * float64(time.Second)))
 	defer timer.Stop()
+	frames := c.frames
 	for {
 		select {
-		case f, more := <-c.frames:
+		case <-c.stream.Context().Done():
+			return errors.New("the client left")
+		case f, more := <-frames:
 			if !more {
-				return io.ErrUnexpectedEOF
+				frames = nil
+				continue
 			}
 			if b := f.GetBlock(); b != nil {
 				return fmt.Errorf("block %d came where none may", b.GetSequence())

@@ -411,13 +411,13 @@ class _Pump:
                         self._taken.append(found)
                     self._changed.notify_all()
         except grpc.aio.AioRpcError as error:
-            return errors.from_rpc(error, self._target.gate_address)
+            return self.protocol.failure(errors.from_rpc(error, self._target.gate_address))
         except asyncio.CancelledError:
             # Of the call by the watch, or of this task by its owner.
             task = asyncio.current_task()
             if task is not None and task.cancelling():
                 raise
-            return errors.Cancelled("the server was silent", code="CANCELLED")
+            return self.protocol.failure(errors.Cancelled("the call was cancelled"))
         finally:
             for task in tasks:
                 task.cancel()
@@ -445,7 +445,7 @@ class _Pump:
         await call.done_writing()
 
     async def _watch(self, call: Any) -> None:
-        """Give a silent connection up: a transport does not notice a frozen peer."""
+        """Give a silent or stuck connection up: a transport does not notice a frozen peer."""
         while not self.protocol.dead(time.monotonic()):  # noqa: ASYNC110  # a clock
             await asyncio.sleep(_TICK)
         call.cancel()

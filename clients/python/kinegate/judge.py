@@ -14,7 +14,7 @@ from typing import TYPE_CHECKING, Final, TypedDict
 
 import grpc
 
-from kinegate.errors import ArgumentError, ServerError, StreamBroken, shortened
+from kinegate.errors import ArgumentError, ServerError, StreamBroken, Unavailable, shortened
 from kinegate.selection import Hypothesis, Selection, entry_detail, outline
 from kinegate.v1 import info_pb2, selection_pb2
 from kinegate.verdicts import Verdicts
@@ -31,8 +31,11 @@ HEARTBEAT: Final = 1.0
 """Silence in second after which a side says that it is alive."""
 DEAD: Final = 3.0
 """Silence in second after which the other side counts as gone."""
-STUCK: Final = 30.0
-"""Age in second of the oldest unanswered block at which a server counts as stuck."""
+STUCK: Final = 3.0
+"""Time in second without a verdict on blocks that a server has, after which it counts as stuck.
+
+It is told from this side's clock: a handler that hangs may still beat, whatever it says then.
+"""
 AHEAD: Final = 2
 """Blocks that are prepared beyond the credit, so that the stream never waits for them."""
 LATE: Final = ("accept", "reject")
@@ -128,6 +131,8 @@ class _Waiting:
     events: Events
     message: event_pb2.EventBlock
     size: int
+    sent_at: float | None = None
+    """When it was sent for the first time."""
 
 
 class Protocol:
@@ -143,6 +148,8 @@ class Protocol:
         """Events that were marked EXPIRED."""
         self.draining = False
         """The server said that it will leave."""
+        self.lost = ""
+        """Why the connection at hand was given up; empty where it was not."""
         self._waiting: deque[_Waiting] = deque()
         self._next = settings.first_sequence
         self._sent = 0  # of those waiting, on this connection
@@ -150,7 +157,10 @@ class Protocol:
         self._credit: selection_pb2.Credit | None = None
         self._finished = False
         self._last_sent = self._last_received = self._progress = 0.0
-        self._oldest_pending = 0.0
+        # The last verdict, or the first block after a time without any.
+        self._moved = 0.0
+        # Doubled whenever it passes, in case blocks take longer.
+        self._stuck = STUCK
 
     @property
     def waiting_count(self) -> int:
@@ -181,7 +191,7 @@ class Protocol:
         self._sent = self._sent_bytes = 0
         self._credit = None
         self.draining = False
-        self._oldest_pending = 0.0
+        self.lost = ""
         self._last_sent = self._last_received = now
         if self._progress == 0:
             self._progress = now
@@ -215,6 +225,10 @@ class Protocol:
             fits = self._sent < self._credit.block_count and used <= self._credit.byte_count
             # A single block beyond the byte credit is the server's to refuse.
             if fits or self._sent == 0:
+                if self._sent == 0:
+                    self._moved = now
+                if block.sent_at is None:
+                    block.sent_at = now
                 self._sent += 1
                 self._sent_bytes = used
                 self._last_sent = now
@@ -222,7 +236,12 @@ class Protocol:
         if now - self._last_sent >= HEARTBEAT:
             self._last_sent = now
             known = self._next - len(self._waiting) - 1
-            beat = selection_pb2.Heartbeat(received_sequence=known, answered_sequence=known)
+            oldest = self._waiting[0].sent_at if self._waiting else None
+            beat = selection_pb2.Heartbeat(
+                received_sequence=known,
+                answered_sequence=known,
+                oldest_pending_s=0.0 if oldest is None else now - oldest,
+            )
             return selection_pb2.JudgeRequest(heartbeat=beat)
         return None
 
@@ -244,10 +263,8 @@ class Protocol:
             self._opened(response.opened)
         elif kind == "draining":
             self.draining = True
-        elif kind == "heartbeat":
-            self._oldest_pending = response.heartbeat.oldest_pending_s
         elif kind == "verdict":
-            self._progress = now
+            self._progress = self._moved = now
             return self._answered(response.verdict)
         if kind != "opened" and self._sent == 0:
             # Nothing is wanted of the server: patience is for answers that do not come.
@@ -275,7 +292,6 @@ class Protocol:
         block = self._waiting.popleft()
         self._sent -= 1
         self._sent_bytes -= block.size
-        self._oldest_pending = 0.0
         return block.events, verdict
 
     def read(self, events: Events, verdict: verdict_pb2.VerdictBlock) -> Verdicts:
@@ -291,8 +307,21 @@ class Protocol:
         return verdicts
 
     def dead(self, now: float) -> bool:
-        """Tell whether the connection must be given up: silent, or stuck on a block."""
-        return now - self._last_received > DEAD or self._oldest_pending > STUCK
+        """Tell whether the connection must be given up, and keep why: silent, or stuck."""
+        if not self.lost:
+            if now - self._last_received > DEAD:
+                done = "was silent" if self._credit else "did not open the stream"
+                self.lost = f"the server {done} for {DEAD:g} s"
+            elif self._sent and now - self._moved > self._stuck:
+                self.lost = f"the server is stuck: alive, but no verdict for {self._stuck:g} s"
+                self._stuck *= 2
+        return self.lost != ""
+
+    def failure(self, error: ServerError) -> ServerError:
+        """Return why a connection ended: what this side saw comes before how the call ended."""
+        if not self.lost:
+            return error
+        return Unavailable(self.lost, code="UNAVAILABLE", retryable=True)
 
     def fail_if_hopeless(self, error: ServerError | None, address: str, now: float) -> None:
         """Raise where another try would not help, or none has helped for too long."""

@@ -132,7 +132,6 @@ class _Pump:
         self._closed = False
         self._attempt = 0
         self._call: Any = None
-        self._dead = False
 
     def start(self, blocks: Iterator[Events]) -> None:
         for run, arguments in ((self._feed, (blocks,)), (self._connect, ()), (self._watch, ())):
@@ -215,7 +214,7 @@ class _Pump:
                 if self.protocol.done():
                     return
                 # A silent peer may be cut off: a new connection, maybe to another replica.
-                if self._dead:
+                if self.protocol.lost:
                     channel.close()
                     channel = self._target.channel(self._target.gate_address)
                 moved = error is None or self.protocol.waiting_count < before
@@ -230,7 +229,6 @@ class _Pump:
         """Run one stream to its end; returns why it failed."""
         with self._changed:
             self._attempt += 1
-            self._dead = False
             opening = self.protocol.connect(time.monotonic())
         stub = selection_pb2_grpc.SelectionServiceStub(channel)
         call = stub.Judge(self._frames(opening, self._attempt), wait_for_ready=True)
@@ -246,7 +244,7 @@ class _Pump:
                         self._taken.append(found)
                     self._changed.notify_all()
         except grpc.RpcError as error:
-            return errors.from_rpc(error, self._target.gate_address)
+            return self.protocol.failure(errors.from_rpc(error, self._target.gate_address))
         finally:
             with self._changed:
                 self._attempt += 1
@@ -272,12 +270,11 @@ class _Pump:
             yield frame
 
     def _watch(self) -> None:
-        """Give a silent connection up: a transport does not notice a frozen peer."""
+        """Give a silent or stuck connection up: a transport does not notice a frozen peer."""
         while not self._stopped.wait(_TICK):
             with self._changed:
                 call = self._call
                 if call is None or not self.protocol.dead(time.monotonic()):
                     continue
-                self._dead = True
             with contextlib.suppress(Exception):
                 call.cancel()

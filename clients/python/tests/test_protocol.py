@@ -6,7 +6,7 @@ import numpy as np
 import pytest
 
 from kinegate import Events, Selection, StreamBroken
-from kinegate.judge import DEAD, HEARTBEAT, Protocol, Settings
+from kinegate.judge import DEAD, HEARTBEAT, STUCK, Protocol, Settings
 from kinegate.v1 import selection_pb2, verdict_pb2
 
 
@@ -71,18 +71,45 @@ def test_heartbeat_after_silence_only() -> None:
     frame = protocol.outgoing(HEARTBEAT)
     assert frame is not None
     assert frame.heartbeat.answered_sequence == 3
+    assert frame.heartbeat.oldest_pending_s == HEARTBEAT
     assert protocol.outgoing(HEARTBEAT * 1.5) is None
 
 
-def test_silence_and_a_stuck_server_are_told() -> None:
+def test_silence_is_told() -> None:
     protocol = started()
     assert not protocol.dead(DEAD)
     assert protocol.dead(DEAD + 0.1)
-    protocol.incoming(opened(), 5.0)
-    assert not protocol.dead(5.1)
-    beat = selection_pb2.Heartbeat(oldest_pending_s=100)
-    protocol.incoming(selection_pb2.JudgeResponse(heartbeat=beat), 5.0)
-    assert protocol.dead(5.1)
+    assert "did not open the stream" in protocol.lost
+    protocol.connect(10.0)
+    protocol.incoming(opened(), 11.0)
+    assert not protocol.dead(11.0 + DEAD)
+    assert protocol.dead(11.1 + DEAD)
+    assert "was silent" in protocol.lost
+
+
+def test_a_stuck_server_is_told_by_its_verdicts_alone() -> None:
+    beat = selection_pb2.JudgeResponse(heartbeat=selection_pb2.Heartbeat())
+    protocol = started(blocks=2)
+    protocol.incoming(opened(blocks=1), 0.0)
+    # Nothing is asked of it yet.
+    protocol.incoming(beat, 9.0)
+    assert not protocol.dead(10.0)
+    assert sent(protocol, 10.0) == [0]
+    protocol.incoming(verdict(0), 12.5)
+    assert sent(protocol, 12.5) == [1]
+    protocol.incoming(beat, 14.0)
+    assert not protocol.dead(12.5 + STUCK)
+    protocol.incoming(beat, 15.0)
+    assert protocol.dead(12.6 + STUCK)
+    assert "stuck" in protocol.lost
+    assert protocol.dead(12.7 + STUCK)  # once more is once: the time is not doubled again
+    # A second server has twice the time: blocks may take that long.
+    protocol.connect(20.0)
+    protocol.incoming(opened(), 20.0)
+    assert sent(protocol, 20.0) == [1]
+    protocol.incoming(beat, 20.0 + 2 * STUCK)
+    assert not protocol.dead(20.0 + 2 * STUCK)
+    assert protocol.dead(20.1 + 2 * STUCK)
 
 
 def test_resume_begins_with_the_first_unanswered() -> None:
