@@ -341,5 +341,13 @@ func TestGoldenGenerated(t *testing.T) {
 			Products: []Product{pion(1), pion(-1), pi0()}, Density: DalitzPolynomial{Terms: []DalitzTerm{{1, 0, 0}, {-1.1, 0, 1}}},
 		}}
 		section("densities", at(1.7, proton(), eta))
+		section("nested_shapes", at(2.7, a1(), roper()))
+		through := Config{
+			Seed: 5, Initial: FixedTarget{Beam: Beam{Spectrum: Flat{0.4, 2}}, TargetMassGeV: mProton}, Weighted: true,
+			Channels: []Channel{{Products: []Product{
+				pi0(), broad(mRoper, wRoper, LineShape{}, proton(), pion(1), pion(-1)),
+			}}},
+		}
+		section("through_the_width", through)
 	})
 }

@@ -16,7 +16,8 @@ type Product struct {
 	// WidthGeV is the total width; 0 means sharp: always the nominal mass. A
 	// particle without a stated decay is sharp too.
 	WidthGeV float64
-	// Shape is the line shape of a broad particle.
+	// Shape is the line shape of a broad particle. Its L and radius shape the masses of
+	// two daughters with a broad one among them for a sharp particle too.
 	Shape LineShape
 	// MeanLifeS is the mean life at rest in seconds; 0 means that it decays where
 	// it came into being. It counts only with a stated decay.

@@ -148,6 +148,30 @@ func TestFractionRemark(t *testing.T) {
 	}
 }
 
+// TestThroughWidthRemark holds that a constant rate below the threshold of the nominal masses is
+// told, and neither one that starts above it nor a rate that falls there by itself is.
+func TestThroughWidthRemark(t *testing.T) {
+	t.Parallel()
+	s := newServices(t)
+	falling := &kinegatev1.EnergyDependence{Kind: &kinegatev1.EnergyDependence_PhaseSpace{PhaseSpace: &kinegatev1.PhaseSpaceRate{}}}
+	for i, c := range []struct {
+		from, to float64
+		energy   *kinegatev1.EnergyDependence
+		told     bool
+	}{
+		{0.9, 1.3, nil, true}, {0.9, 1.09, nil, true}, {1.1, 1.3, nil, false}, {0.9, 1.3, falling, false},
+	} {
+		g := &kinegatev1.Generation{InitialState: tagged(c.from, c.to), Channels: reactions("gamma p -> p rho0, rho0 -> pi+ pi-")}
+		g.Channels[0].Energy = c.energy
+		header := mustGenerate(t, s, &kinegatev1.GenerateEventsRequest{Generation: g, EventCount: 1}).frames[0].GetHeader()
+		remarks := strings.Join(header.GetChannels()[0].GetRemarks(), "; ")
+		// m_p + m_rho0, the threshold that kinegate reaction gives.
+		if told := strings.Contains(remarks, "below sqrt(s) = 1.713532 GeV"); told != c.told {
+			t.Errorf("case %d: remarks %q", i, remarks)
+		}
+	}
+}
+
 // TestLawRemark holds that a channel which is made isotropic although a law for it exists says
 // so, and no other.
 func TestLawRemark(t *testing.T) {

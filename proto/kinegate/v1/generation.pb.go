@@ -952,7 +952,9 @@ type DecayOptions struct {
 	// 1, and a remark of the channel says so.
 	BranchingFraction *float64 `protobuf:"fixed64,2,opt,name=branching_fraction,json=branchingFraction,proto3,oneof" json:"branching_fraction,omitempty"`
 	// Distribution of the product's mass, where it is not sharp. Absent: a relativistic
-	// Breit-Wigner of the lowest angular momentum that spins and parities allow.
+	// Breit-Wigner of the lowest angular momentum that spins and parities allow. Where one of
+	// two daughters is broad, its angular momentum and radius shape the daughter's mass, for
+	// a sharp product too: eta' -> rho0 gamma goes with the third power of the momentum.
 	LineShape *LineShape `protobuf:"bytes,3,opt,name=line_shape,json=lineShape,proto3" json:"line_shape,omitempty"`
 	// Density of the decay over its phase space. Absent: phase space, except for decays of
 	// muons, taus and neutrons to leptons, which have their spectra.
