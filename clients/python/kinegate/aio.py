@@ -95,6 +95,7 @@ class AsyncClient:
         """Close the connection and with it every stream."""
         for stream in list(self._streams):
             await stream.close()
+        self._guard.close()
         await self._channel.close()
 
     @property

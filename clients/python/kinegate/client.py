@@ -99,6 +99,7 @@ class Client:
             return
         for stream in list(self._streams):
             stream.close()
+        self._guard.close()
         self._channel.close()
 
     @property
@@ -121,7 +122,9 @@ class Client:
         >>> client.with_timeout(30).particle("p").name
         'p'
         """
-        other = copy.copy(self)
+        # Not by copy.copy, which goes the way of pickle and would connect anew.
+        other = Client.__new__(Client)
+        vars(other).update(vars(self))
         other._target = self._target.with_timeout(seconds)  # noqa: SLF001  # its own copy
         return other
 

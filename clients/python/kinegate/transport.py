@@ -159,19 +159,26 @@ def _read(field: str, path: str | None) -> bytes | None:
 
 
 class ProcessGuard:
-    """Refuses calls in a forked child, where an inherited channel can hang for ever."""
+    """Refuses calls after the end, and in a forked child, where a channel can hang for ever."""
 
     def __init__(self, what: str = "client") -> None:
         self._owner = os.getpid()
         self._what = what
+        self._closed = False
 
     @property
     def foreign(self) -> bool:
         """True in any process but the one that made the client."""
         return os.getpid() != self._owner
 
+    def close(self) -> None:
+        """Refuse all calls from now on."""
+        self._closed = True
+
     def check(self) -> None:
-        """Raise UsageError in any process but the one that made the client."""
+        """Raise UsageError after the end, and in any process but the one that made the client."""
+        if self._closed:
+            raise UsageError(f"this {self._what} is closed; connect anew")
         if self.foreign:
             raise UsageError(
                 f"this {self._what} was made in process {self._owner} and is used in its forked "
@@ -180,7 +187,7 @@ class ProcessGuard:
             )
 
 
-_loops: weakref.WeakSet[asyncio.AbstractEventLoop] = weakref.WeakSet()
+_guards: weakref.WeakSet[LoopGuard] = weakref.WeakSet()
 
 
 class LoopGuard(ProcessGuard):
@@ -195,15 +202,19 @@ class LoopGuard(ProcessGuard):
                 "connect_async needs a running event loop: call it inside a coroutine, "
                 "or use kinegate.connect for synchronous code"
             ) from None
-        if any(loop is not self._loop and loop.is_running() for loop in list(_loops)):
+        if any(guard.holds(other=self._loop) for guard in list(_guards)):
             raise UsageError(
                 "another event loop of this process already has an asyncio client, and gRPC "
                 "serves one loop a process; use that loop, or kinegate.connect in this thread"
             )
-        _loops.add(self._loop)
+        _guards.add(self)
+
+    def holds(self, *, other: asyncio.AbstractEventLoop) -> bool:
+        """Tell whether the client is in use by a running event loop that is not this one."""
+        return not self._closed and self._loop is not other and self._loop.is_running()
 
     def check(self) -> None:
-        """Raise UsageError in another process or event loop than that of the client."""
+        """Raise UsageError after the end, and in another process or loop than the client's."""
         super().check()
         if asyncio.get_running_loop() is not self._loop:
             raise UsageError("this client belongs to another event loop; connect in this one")

@@ -13,11 +13,14 @@ import sys
 import time
 import warnings
 from pathlib import Path
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 import pytest
 
 import kinegate
+
+if TYPE_CHECKING:
+    from collections.abc import Callable
 
 
 def test_unknown_name(client: kinegate.Client) -> None:
@@ -165,13 +168,78 @@ def test_second_running_loop_is_refused(server: kinegate.LocalServer) -> None:
     asyncio.run(first())  # one loop after the other is fine
 
 
+def test_another_loop_may_follow_a_closed_client(server: kinegate.LocalServer) -> None:
+    """Also while the loop of the closed client still runs, as that of a notebook does."""
+
+    async def ask() -> str:
+        async with kinegate.connect_async(server.address) as client:
+            return (await client.particle("p")).name
+
+    async def first() -> list[str]:
+        kept = kinegate.connect_async(server.address)
+        names = [(await kept.particle("p")).name]
+        await kept.close()
+        names += [await asyncio.to_thread(asyncio.run, ask()) for _ in range(20)]
+        return [*names, await ask()]
+
+    assert asyncio.run(first()) == ["p"] * 22
+
+
+def test_closed_client_says_so(client: kinegate.Client, testdata: Path) -> None:
+    generation = {"channels": [{"reaction": "pi0 -> gamma gamma"}]}
+    events = kinegate.Events.read_csv(testdata / "open" / "dimuon_2011A.csv")
+    chosen = client.selection(testdata / "selections" / "dimuon.yaml")
+    closed = kinegate.Client(client._target)
+    shared = closed.with_timeout(3)
+    closed.close()
+    closed.close()  # once more is once
+
+    def refuses(one: kinegate.Client) -> None:
+        asks: list[Callable[[], object]] = [
+            lambda: one.particle("p"),
+            lambda: one.judge(events, chosen),
+            lambda: one.judge_block(events.cut(0, 1), chosen),
+            lambda: one.generate(generation, 1).read(),
+            lambda: one.stubs,
+        ]
+        for ask in asks:
+            with pytest.raises(kinegate.UsageError, match="client is closed"):
+                ask()
+
+    refuses(closed)
+    refuses(shared)
+
+
+def test_closed_asyncio_client_says_so(client: kinegate.Client, testdata: Path) -> None:
+    generation = {"channels": [{"reaction": "pi0 -> gamma gamma"}]}
+    events = kinegate.Events.read_csv(testdata / "open" / "dimuon_2011A.csv")
+    chosen = client.selection(testdata / "selections" / "dimuon.yaml")
+
+    async def use() -> None:
+        closed = kinegate.connect_async(client._target.address)
+        begun = closed.judge(events, chosen)
+        await closed.close()
+        for ask in (
+            closed.particle("p"),
+            closed.judge_block(events.cut(0, 1), chosen),
+            begun.__anext__(),
+        ):
+            with pytest.raises(kinegate.UsageError, match="client is closed"):
+                await ask
+        with pytest.raises(kinegate.UsageError, match="client is closed"):
+            closed.judge(events, chosen)
+        with pytest.raises(kinegate.UsageError, match="client is closed"):
+            await (await closed.generate(generation, 1)).read()
+
+    asyncio.run(use())
+
+
 def test_client_stays_in_its_loop(server: kinegate.LocalServer) -> None:
     kept: list[kinegate.AsyncClient] = []
 
     async def make() -> None:
         kept.append(kinegate.connect_async(server.address))
         await kept[0].particle("p")
-        await kept[0].close()
 
     async def use() -> None:
         with pytest.raises(kinegate.UsageError, match="belongs to another event loop"):
