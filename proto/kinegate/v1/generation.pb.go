@@ -97,8 +97,10 @@ type Generation struct {
 	InitialState *GenerationInitialState `protobuf:"bytes,4,opt,name=initial_state,json=initialState,proto3" json:"initial_state,omitempty"`
 	// One channel, or a mixture of up to 64.
 	Channels []*GenerationChannel `protobuf:"bytes,5,rep,name=channels,proto3" json:"channels,omitempty"`
-	// Events carry weights, and every draw is an event. Of one channel only. Otherwise
-	// events are drawn again until they are accepted, and carry weight 1, or more where
+	// Events carry weights, and every draw is an event. Of one channel only: at one energy
+	// the mean weight is a volume of phase space, whose unit differs between numbers of
+	// products, so that weights of several channels do not compare. Otherwise events are
+	// drawn again until they are accepted, and carry weight 1, or more where
 	// the channel's bound was exceeded.
 	Weighted bool `protobuf:"varint,6,opt,name=weighted,proto3" json:"weighted,omitempty"`
 	// Where the interactions happen; absent means at the origin.
@@ -293,7 +295,8 @@ type GenerationChannel struct {
 	StructuredReaction *Reaction `protobuf:"bytes,3,opt,name=structured_reaction,json=structuredReaction,proto3" json:"structured_reaction,omitempty"`
 	// Share of the events that are of this channel, relative to the other channels'
 	// shares, at least 0. It counts events of the stated final state: branching fractions
-	// do not enter. Absent means 1.
+	// do not enter. For shares that follow rates, give the cross-section times the
+	// branching_fraction of the channel's outline. Absent means 1.
 	Fraction *float64 `protobuf:"fixed64,4,opt,name=fraction,proto3,oneof" json:"fraction,omitempty"`
 	// How the rate depends on the energy beside the flux; absent means constant.
 	Energy *EnergyDependence `protobuf:"bytes,5,opt,name=energy,proto3" json:"energy,omitempty"`
@@ -301,8 +304,9 @@ type GenerationChannel struct {
 	Angle *ProductionAngle `protobuf:"bytes,6,opt,name=angle,proto3" json:"angle,omitempty"`
 	// Unweighting bound as a fraction of the analytic ceiling of the weight, above 0;
 	// absent means 1, which no phase-space weight exceeds. Lower is faster; an event
-	// above it carries the weight over the bound and is counted. MeasureBound and
-	// `kinegate bound` measure one.
+	// above it carries the weight over the bound and is counted. MeasureBound measures
+	// one, which every sample of more than a few particles needs: with a bound far above
+	// all weights events are given up (exhausted_count), and the sample is biased.
 	Bound *float64 `protobuf:"fixed64,7,opt,name=bound,proto3,oneof" json:"bound,omitempty"`
 	// What replaces the tables for single decays.
 	Decays []*DecayOptions `protobuf:"bytes,8,rep,name=decays,proto3" json:"decays,omitempty"`
@@ -1978,7 +1982,8 @@ type GenerationSummary struct {
 	OverflowCount int64 `protobuf:"varint,6,opt,name=overflow_count,json=overflowCount,proto3" json:"overflow_count,omitempty"`
 	// Largest excess among them; 0 without any.
 	LargestWeight float64 `protobuf:"fixed64,7,opt,name=largest_weight,json=largestWeight,proto3" json:"largest_weight,omitempty"`
-	// Events given up after 100,000 draws, of weight 0.
+	// Events given up after 100,000 draws, of weight 0. The rest of an unweighted sample
+	// is then biased: it lacks what is hard to draw.
 	ExhaustedCount int64 `protobuf:"varint,8,opt,name=exhausted_count,json=exhaustedCount,proto3" json:"exhausted_count,omitempty"`
 	// Sum of the weights.
 	WeightSum float64 `protobuf:"fixed64,9,opt,name=weight_sum,json=weightSum,proto3" json:"weight_sum,omitempty"`

@@ -2,6 +2,7 @@ package main
 
 import (
 	"context"
+	"errors"
 	"fmt"
 	"os"
 	"strings"
@@ -41,7 +42,8 @@ func generateCommand(p program) *cobra.Command {
 	g.flags(c)
 	g.sample(c)
 	g.described.BoolVar(&g.weighted, "weighted", false, "events with weights, in place of unweighted ones; of one reaction only")
-	g.described.Float64Var(&g.bound, "bound", 1, "unweighting bound as kinegate bound measures it, above 0; of one reaction only")
+	g.described.Float64Var(&g.bound, "bound", 0, "unweighting bound as kinegate bound measures it, above 0; of one reaction only; left out it\n"+
+		"is measured first, and printed")
 	f := c.Flags()
 	f.AddFlagSet(g.described)
 	f.Int64Var(&g.events, "events", 1000, "number of events, at least 0")
@@ -109,6 +111,7 @@ type generateRun struct {
 	events, first, seed                int64
 	seeded, weighted                   bool
 	bound                              float64
+	measured                           []measuredBound // bounds that were not given
 	detectorFile, requestFile, outFile string
 	show                               int
 	observable                         string
@@ -152,19 +155,27 @@ func (g *generateRun) run(ctx context.Context, reactions []string) error {
 		Generation: generation, FirstEvent: g.first, EventCount: g.events, BlockEventCount: eventsPerBlock,
 	}
 	s := &generated{environment: g.environment, sink: sink, show: g.show, drawn: drawn}
-	if err := s.receive(ctx, client, request); err != nil {
+	err = g.settleBounds(ctx, client, generation)
+	if err == nil {
+		s.bounds = g.measured
+		err = s.receive(ctx, client, request)
+	}
+	if err != nil {
 		if len(reactions) == 1 {
 			err = underline(err, reactions[0])
 		}
 		return err
 	}
-	if err := s.report(g.outFile); err != nil || drawn == nil {
+	if err := s.report(g.outFile); err != nil {
 		return err
 	}
-	if draw {
-		return g.picture.save(g.environment, drawn.picture())
+	switch {
+	case draw:
+		err = g.picture.save(g.environment, drawn.picture())
+	case drawn != nil:
+		err = drawn.write(g.environment)
 	}
-	return drawn.write(g.environment)
+	return errors.Join(err, s.givenUp())
 }
 
 // generation reads the files and flags.

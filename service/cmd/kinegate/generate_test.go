@@ -101,6 +101,38 @@ func TestGenerate(t *testing.T) {
 	}
 }
 
+// TestGenerateMeasuresBounds holds that many particles make events without a word about bounds,
+// and that the bound which was measured, given as input, makes the same events.
+func TestGenerateMeasuresBounds(t *testing.T) {
+	t.Parallel()
+	const many = `"gamma p -> p` + " pi0 pi0 pi0 pi0 pi0 pi0 pi0 pi0 pi0 pi0 pi0" + `" --beam "10 GeV" --events 3`
+	digest := func(out string) string {
+		_, after, _ := strings.Cut(out, "digest of the sample  ")
+		return strings.TrimSpace(after)
+	}
+	code, out, errs := command(t, shellWords("generate "+many)...)
+	bound, _, found := strings.Cut(strings.TrimPrefix(errs, "bound "), ", measured with 100000 draws, of gamma p -> p pi0")
+	if code != exitWell || !found || !strings.Contains(out, "measured bound        "+bound+", gamma p -> p pi0") {
+		t.Fatalf("code %d, %s%s", code, errs, out)
+	}
+	again, repeated, _ := command(t, shellWords("generate "+many+" --bound "+bound)...)
+	if again != exitWell || digest(repeated) != digest(out) || digest(out) == "" {
+		t.Errorf("with the bound given: code %d, %s in place of %s", again, repeated, out)
+	}
+	if _, weighted, errs := command(t, shellWords("generate "+many+" --weighted")...); strings.Contains(weighted+errs, "measured") {
+		t.Errorf("weighted events have a bound: %s%s", errs, weighted)
+	}
+	// A sample that lacks events has failed, whatever form it is printed in.
+	for _, flag := range []string{"", " --json"} {
+		wantCommand(t, "generate "+many+" --bound 1"+flag, exitFailed, "3 of 3 events were given up")
+	}
+	// Two reactions, a bound each.
+	_, out, _ = command(t, shellWords(`generate "gamma p -> p pi+ pi-" "gamma p -> p pi+ pi- pi0" --beam "2 GeV" --events 20`)...)
+	if strings.Count(out, "measured bound") != 2 {
+		t.Errorf("of two reactions: %s", out)
+	}
+}
+
 // TestPlotChoosesAnObservable holds that without a word from the user no sharp mass is drawn.
 func TestPlotChoosesAnObservable(t *testing.T) {
 	t.Parallel()

@@ -23,6 +23,8 @@ type generated struct {
 	sink  eventSink // nil for none
 	show  int
 	drawn *observableSample // nil for none
+	// bounds are those that were measured.
+	bounds []measuredBound
 
 	header  *kinegatev1.GenerationHeader
 	summary *kinegatev1.GenerationSummary
@@ -213,6 +215,9 @@ func (g *generated) report(file string) error {
 		overflows += fmt.Sprintf(", largest weight %.4g", s.GetLargestWeight())
 	}
 	t.Row("overflows", overflows)
+	for _, b := range g.bounds {
+		t.Row("measured bound", b.bound+", "+b.channel)
+	}
 	if g.measured {
 		t.Row("with an object seen", strconv.FormatInt(s.GetSeenEventCount(), 10))
 	}
@@ -233,6 +238,16 @@ func (g *generated) report(file string) error {
 		g.print("  written: %s", file)
 	}
 	return nil
+}
+
+// givenUp is the fault of a sample that lacks events.
+func (g *generated) givenUp() error {
+	lost := g.summary.GetExhaustedCount()
+	if lost == 0 {
+		return nil
+	}
+	return fmt.Errorf("%d of %d events were given up and have weight 0: the sample lacks what is hard to draw, and is biased",
+		lost, g.summary.GetEventCount())
 }
 
 // table prints the particles of the first events.
