@@ -1,5 +1,6 @@
 #include "kinegate/events.h"
 
+#include <cstring>
 #include <string>
 
 #include "kinegate/error.h"
@@ -55,13 +56,11 @@ std::string Copy(const char* name, const Column<T>& column, std::size_t rows, Ra
 
 // CopyOffsets copies the offsets of a range of events, moved to start at 0.
 std::string CopyOffsets(const Column<std::int32_t>& offsets, Range of) {
-  std::string bytes(reinterpret_cast<const char*>(offsets.data() + of.first),
-                    (of.count + 1) * sizeof(std::int32_t));
-  const std::int32_t first = offsets[of.first];
-  if (first == 0) return bytes;
-  std::vector<std::int32_t> moved(of.count + 1);
-  for (std::size_t i = 0; i <= of.count; ++i) moved[i] = offsets[of.first + i] - first;
-  bytes.assign(reinterpret_cast<const char*>(moved.data()), bytes.size());
+  std::string bytes((of.count + 1) * sizeof(std::int32_t), '\0');
+  for (std::size_t i = 0; i <= of.count; ++i) {
+    const std::int32_t moved = offsets[of.first + i] - offsets[of.first];
+    std::memcpy(bytes.data() + i * sizeof moved, &moved, sizeof moved);
+  }
   return bytes;
 }
 

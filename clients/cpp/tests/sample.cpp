@@ -39,6 +39,33 @@ EventArrays Sample::arrays() const {
   return arrays;
 }
 
+Full::Full(int events) : sample(events) {
+  const std::size_t n = sample.ids.size(), objects = sample.classes.size();
+  for (std::size_t i = 0; i < 6 * objects; ++i) numbers.push_back(1e-3 * static_cast<double>(i));
+  for (std::size_t i = 0; i < objects; ++i) {
+    masks.push_back(static_cast<std::uint8_t>(i % 8));
+    groups.push_back(static_cast<std::int32_t>(i % 2));
+  }
+  for (std::size_t i = 0; i <= n; ++i) one_each.push_back(static_cast<std::int32_t>(i));
+}
+
+EventArrays Full::arrays() const {
+  const std::size_t n = sample.ids.size(), objects = sample.classes.size();
+  const auto column = [this](std::size_t from, std::size_t size) {
+    return Column<double>(numbers.data() + from, size);
+  };
+  EventArrays a = sample.arrays();
+  a.run_number = 7;
+  a.measured_mask = a.species_mask = masks;
+  a.covariance = numbers;
+  a.beam = {one_each, column(1, n), column(2, n), column(3, n)};
+  a.vertex = {column(4, n), column(5, n), column(6, n), column(7, 6 * n)};
+  a.vertex_group = {groups, one_each, column(8, n), column(9, n), column(10, n), column(11, 6 * n)};
+  a.cluster_position = {column(12, objects), column(13, objects), column(14, objects)};
+  a.polarisation = {column(15, n), column(16, n), column(17, n)};
+  return a;
+}
+
 v1::Selection PairSelection() {
   v1::Selection selection;
   selection.set_name("pairs");

@@ -22,6 +22,18 @@ struct Sample {
   std::vector<std::uint8_t> classes;
 };
 
+// Full is a sample with every optional column, whose numbers all differ.
+struct Full {
+  explicit Full(int events);
+  // arrays points into this object.
+  EventArrays arrays() const;
+
+  Sample sample;
+  std::vector<double> numbers;
+  std::vector<std::uint8_t> masks;
+  std::vector<std::int32_t> groups, one_each;
+};
+
 // PairSelection has one hypothesis, a pi0 of two photons among any others.
 v1::Selection PairSelection();
 

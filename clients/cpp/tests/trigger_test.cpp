@@ -19,6 +19,7 @@ namespace kinegate::trigger {
 namespace {
 
 using testing::Folder;
+using testing::Full;
 using testing::Sample;
 
 // AddBlock writes a block behind its length.
@@ -42,44 +43,6 @@ void WriteBlocks(const std::string& name, const EventArrays& arrays) {
 void WriteBlocks(const std::string& name, const Sample& sample) {
   WriteBlocks(name, sample.arrays());
 }
-
-// Full is a sample with every optional column, whose numbers all differ.
-struct Full {
-  explicit Full(int count) : sample(count) {
-    const auto number = [](std::size_t i) { return 1e-3 * static_cast<double>(i); };
-    const std::size_t n = sample.ids.size(), objects = sample.classes.size();
-    for (std::size_t i = 0; i < 6 * objects; ++i) covariance.push_back(number(i));
-    for (std::size_t i = 0; i < objects; ++i) {
-      masks.push_back(static_cast<std::uint8_t>(i % 8));
-      groups.push_back(static_cast<std::int32_t>(i % 2));
-    }
-    for (std::size_t i = 0; i < n; ++i) one_each.push_back(static_cast<std::int32_t>(i));
-    one_each.push_back(static_cast<std::int32_t>(n));
-  }
-
-  // arrays points into this object.
-  EventArrays arrays() const {
-    const std::size_t n = sample.ids.size(), objects = sample.classes.size();
-    const auto column = [this](std::size_t from, std::size_t size) {
-      return Column<double>(covariance.data() + from, size);
-    };
-    EventArrays a = sample.arrays();
-    a.run_number = 7;
-    a.measured_mask = a.species_mask = masks;
-    a.covariance = covariance;
-    a.beam = {one_each, column(1, n), column(2, n), column(3, n)};
-    a.vertex = {column(4, n), column(5, n), column(6, n), column(7, 6 * n)};
-    a.vertex_group = {groups, one_each, column(8, n), column(9, n), column(10, n), column(11, 6 * n)};
-    a.cluster_position = {column(12, objects), column(13, objects), column(14, objects)};
-    a.polarisation = {column(15, n), column(16, n), column(17, n)};
-    return a;
-  }
-
-  Sample sample;
-  std::vector<double> covariance;
-  std::vector<std::uint8_t> masks;
-  std::vector<std::int32_t> groups, one_each;
-};
 
 TEST(BlockFile, ReadsBackWhatWasWritten) {
   const Folder folder;
