@@ -61,11 +61,40 @@ void CheckEntries(const v1::VerdictBlock& block, std::size_t events) {
   CheckSize(block, "entries.beam_rows", e.beam_rows().size(), rows * sizeof(std::int16_t));
   CheckSize(block, "entries.weights", e.weights().size(), rows * sizeof(double));
   CheckSize(block, "entries.statuses", e.statuses().size(), rows);
+  CheckSize(block, "entries.assignment_counts", e.assignment_counts().size(), rows * sizeof(std::int32_t));
   CheckSize(
       block, "entries.assignments", e.assignments().size(),
       CheckOffsets(block, "entries.assignment_offsets", e.assignment_offsets(), rows) * sizeof(std::int16_t));
   CheckSize(block, "entries.observables", e.observables().size(),
             CheckOffsets(block, "entries.observable_offsets", e.observable_offsets(), rows) * sizeof(double));
+  if (e.has_observable_uncertainties()) {
+    CheckSize(block, "entries.observable_uncertainties", e.observable_uncertainties().size(),
+              e.observables().size());
+  }
+  if (!e.has_fits()) return;
+  const v1::FitColumns& f = e.fits();
+  CheckSize(block, "entries.fits.statuses", f.statuses().size(), rows);
+  CheckSize(block, "entries.fits.chi_squares", f.chi_squares().size(), rows * sizeof(double));
+  CheckSize(block, "entries.fits.degrees_of_freedom", f.degrees_of_freedom().size(),
+            rows * sizeof(std::int16_t));
+  CheckSize(block, "entries.fits.probabilities", f.probabilities().size(), rows * sizeof(double));
+  CheckSize(block, "entries.fits.iteration_counts", f.iteration_counts().size(), rows * sizeof(std::int16_t));
+}
+
+// Status reads a status, which has one byte.
+template <typename T>
+T Status(const std::string& statuses, std::size_t i) {
+  return static_cast<T>(static_cast<unsigned char>(statuses[i]));
+}
+
+Fit FitAt(const v1::FitColumns& f, std::size_t row) {
+  Fit fit;
+  fit.status = Status<v1::FitStatus>(f.statuses(), row);
+  fit.chi_square = At<double>(f.chi_squares(), row);
+  fit.degrees_of_freedom = At<std::int16_t>(f.degrees_of_freedom(), row);
+  fit.probability = At<double>(f.probabilities(), row);
+  fit.iteration_count = At<std::int16_t>(f.iteration_counts(), row);
+  return fit;
 }
 
 template <typename T>
@@ -99,7 +128,7 @@ Verdicts::Verdicts(v1::VerdictBlock block) : block_(std::move(block)) {
 
 v1::EventStatus Verdicts::status(std::size_t event) const {
   CheckIndex(block_, "event", event, event_count());
-  return static_cast<v1::EventStatus>(static_cast<unsigned char>(block_.statuses()[event]));
+  return Status<v1::EventStatus>(block_.statuses(), event);
 }
 
 bool Verdicts::gate(std::size_t event) const {
@@ -130,9 +159,14 @@ std::vector<Entry> Verdicts::entries(std::size_t event) const {
     entry.hypothesis = At<std::int16_t>(e.hypothesis_indices(), row);
     entry.beam_row = At<std::int16_t>(e.beam_rows(), row);
     entry.weight = At<double>(e.weights(), row);
-    entry.status = static_cast<v1::EntryStatus>(static_cast<unsigned char>(e.statuses()[row]));
+    entry.status = Status<v1::EntryStatus>(e.statuses(), row);
+    entry.assignment_count = At<std::int32_t>(e.assignment_counts(), row);
     entry.assignment = Slice<std::int16_t>(e.assignments(), e.assignment_offsets(), row);
     entry.observables = Slice<double>(e.observables(), e.observable_offsets(), row);
+    if (e.has_observable_uncertainties()) {
+      entry.uncertainties = Slice<double>(e.observable_uncertainties(), e.observable_offsets(), row);
+    }
+    if (e.has_fits()) entry.fit = FitAt(e.fits(), row);
     found.push_back(std::move(entry));
   }
   return found;

@@ -5,6 +5,7 @@
 #include <cstring>
 #include <functional>
 
+#include "history.h"
 #include "kinegate/error.h"
 #include "kinegate/events.h"
 #include "kinegate/verdicts.h"
@@ -130,10 +131,18 @@ v1::VerdictBlock ThreeVerdicts(std::int64_t sequence) {
   e->set_beam_rows(Bytes<std::int16_t>({-1, 2}));
   e->set_weights(Bytes<double>({1, -0.5}));
   e->set_statuses(std::string{1, 2});
+  e->set_assignment_counts(Bytes<std::int32_t>({1, 70'000}));
   e->set_assignment_offsets(Bytes<std::int32_t>({0, 1, 3}));
   e->set_assignments(Bytes<std::int16_t>({4, 0, -1}));
   e->set_observable_offsets(Bytes<std::int32_t>({0, 0, 1}));
   e->set_observables(Bytes<double>({0.25}));
+  e->set_observable_uncertainties(Bytes<double>({0.125}));
+  v1::FitColumns* f = e->mutable_fits();
+  f->set_statuses(std::string{0, v1::FIT_STATUS_CONVERGED});
+  f->set_chi_squares(Bytes<double>({Fit::kNone, 3.5}));
+  f->set_degrees_of_freedom(Bytes<std::int16_t>({0, 5}));
+  f->set_probabilities(Bytes<double>({Fit::kNone, 0.75}));
+  f->set_iteration_counts(Bytes<std::int16_t>({0, 9}));
   return block;
 }
 
@@ -153,6 +162,101 @@ TEST(Verdicts, ReadTheirColumns) {
   EXPECT_EQ(entry.status, v1::ENTRY_STATUS_REJECTED);
   EXPECT_EQ(entry.assignment, (std::vector<std::int16_t>{0, -1}));
   EXPECT_EQ(entry.observables, std::vector<double>{0.25});
+  EXPECT_EQ(entry.assignment_count, 70'000);
+  EXPECT_EQ(entry.uncertainties, std::vector<double>{0.125});
+  ASSERT_TRUE(entry.fit.has_value());
+  EXPECT_EQ(entry.fit->status, v1::FIT_STATUS_CONVERGED);
+  EXPECT_EQ(entry.fit->chi_square, 3.5);
+  EXPECT_EQ(entry.fit->degrees_of_freedom, 5);
+  EXPECT_EQ(entry.fit->probability, 0.75);
+  EXPECT_EQ(entry.fit->iteration_count, 9);
+  EXPECT_TRUE(std::isnan(v.entries(0).at(0).fit->chi_square));
+}
+
+TEST(Verdicts, UncertaintiesAndFitsMayBeAbsent) {
+  v1::VerdictBlock block = ThreeVerdicts(4);
+  block.mutable_entries()->clear_observable_uncertainties();
+  block.mutable_entries()->clear_fits();
+  const Entry entry = Verdicts(block).entries(2).at(0);
+  EXPECT_EQ(entry.observables.size(), 1U);
+  EXPECT_TRUE(entry.uncertainties.empty());
+  EXPECT_FALSE(entry.fit.has_value());
+}
+
+using google::protobuf::Descriptor;
+using google::protobuf::FieldDescriptor;
+using google::protobuf::Message;
+
+// ColumnCount counts the columns that a message and those in it may have.
+int ColumnCount(const Descriptor* of) {
+  int count = 0;
+  for (int i = 0; i < of->field_count(); ++i) {
+    const FieldDescriptor* field = of->field(i);
+    if (field->message_type()) count += ColumnCount(field->message_type());
+    if (field->type() == FieldDescriptor::TYPE_BYTES) ++count;
+  }
+  return count;
+}
+
+// EachColumn visits the columns of a message and of those in it.
+void EachColumn(Message* message, const std::function<void(Message*, const FieldDescriptor*)>& visit) {
+  const auto* reflection = message->GetReflection();
+  std::vector<const FieldDescriptor*> fields;
+  reflection->ListFields(*message, &fields);
+  for (const FieldDescriptor* field : fields) {
+    if (field->type() == FieldDescriptor::TYPE_BYTES) {
+      visit(message, field);
+    } else if (field->is_repeated()) {
+      for (int i = 0; i < reflection->FieldSize(*message, field); ++i)
+        EachColumn(reflection->MutableRepeatedMessage(message, field, i), visit);
+    } else if (field->message_type()) {
+      EachColumn(reflection->MutableMessage(message, field), visit);
+    }
+  }
+}
+
+// Records are the records of all events, or what is wrong with the block.
+std::string Records(const v1::VerdictBlock& block) {
+  try {
+    const Verdicts verdicts(block);
+    std::string records;
+    for (std::size_t i = 0; i < verdicts.event_count(); ++i) records += testing::Record(verdicts, i) + "/";
+    return records;
+  } catch (const Error& error) {
+    return error.what();
+  }
+}
+
+TEST(Verdicts, RecordsHoldEveryByteOfEveryColumn) {
+  v1::VerdictBlock block = ThreeVerdicts(0);
+  const std::string due = Records(block);
+  int columns = 0;
+  EachColumn(&block, [&](Message* message, const FieldDescriptor* field) {
+    ++columns;
+    const auto* reflection = message->GetReflection();
+    const std::string sound = reflection->GetString(*message, field);
+    for (std::size_t i = 0; i < sound.size(); ++i) {
+      std::string other = sound;
+      other[i] = static_cast<char>(other[i] ^ 1);
+      reflection->SetString(message, field, other);
+      EXPECT_NE(Records(block), due) << field->full_name() << " byte " << i;
+    }
+    reflection->SetString(message, field, sound);
+  });
+  EXPECT_EQ(columns, ColumnCount(v1::VerdictBlock::descriptor()));
+}
+
+TEST(Verdicts, EveryColumnMustHaveItsLength) {
+  v1::VerdictBlock block = ThreeVerdicts(0);
+  EachColumn(&block, [&](Message* message, const FieldDescriptor* field) {
+    const auto* reflection = message->GetReflection();
+    const std::string sound = reflection->GetString(*message, field);
+    for (const std::string& other : {sound + sound, sound.substr(1)}) {
+      reflection->SetString(message, field, other);
+      EXPECT_THROW(Verdicts{block}, Error) << field->full_name() << " of " << other.size() << " bytes";
+    }
+    reflection->SetString(message, field, sound);
+  });
 }
 
 TEST(Verdicts, IndicesOutOfRangeAreTold) {
@@ -172,18 +276,12 @@ TEST(Verdicts, UnsoundBlocksAreRefused) {
   const std::function<void(v1::VerdictBlock*)> spoils[] = {
       [](v1::VerdictBlock* b) { b->set_event_count(4); },
       [](v1::VerdictBlock* b) { b->set_event_count(-1); },
-      [](v1::VerdictBlock* b) { b->clear_gate(); },
-      [](v1::VerdictBlock* b) { b->mutable_hypotheses(0)->clear_accepted(); },
-      [](v1::VerdictBlock* b) { b->mutable_groups(0)->set_best("x"); },
       [](v1::VerdictBlock* b) {
         b->mutable_entries()->set_offsets(Bytes<std::int32_t>({0, 2, 1, 2}));
       },
       [](v1::VerdictBlock* b) {
         b->mutable_entries()->set_offsets(Bytes<std::int32_t>({0, 1, 1, 9}));
       },
-      [](v1::VerdictBlock* b) { b->mutable_entries()->set_weights("x"); },
-      [](v1::VerdictBlock* b) { b->mutable_entries()->set_assignments("x"); },
-      [](v1::VerdictBlock* b) { b->mutable_entries()->clear_observables(); },
   };
   for (const auto& spoil : spoils) {
     v1::VerdictBlock block = ThreeVerdicts(0);

@@ -2,6 +2,7 @@
 // reorder, the bits of an uninterrupted run, and a stall noticed within 3.5 s.
 #include <gtest/gtest.h>
 
+#include <algorithm>
 #include <atomic>
 #include <memory>
 #include <thread>
@@ -29,11 +30,14 @@ TEST_F(Faults, KillAndRestart) {
   Server server;
   History history(server.address(), open_, sample_);
   std::atomic<bool> over{false};
+  milliseconds longest{0};  // from an open gate to the first verdict behind it
   std::thread killer([&] {
+    history.Back();
     for (int i = 0; i < 3; ++i) {
       std::this_thread::sleep_for(milliseconds(1'000));
       server.Kill();
       server.Start();
+      longest = std::max(longest, history.Back());
     }
     over = true;
   });
@@ -44,7 +48,7 @@ TEST_F(Faults, KillAndRestart) {
   killer.join();
   EXPECT_EQ(outcome.faults, kNone);
   EXPECT_GE(outcome.breaks, 3);
-  EXPECT_LT(outcome.longest_gap, kBack);
+  EXPECT_LT(longest, kBack);
 }
 
 TEST_F(Faults, FreezeIsNoticedAndLeftForAnotherServer) {

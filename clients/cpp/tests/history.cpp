@@ -12,25 +12,48 @@ namespace {
 using Clock = std::chrono::steady_clock;
 using std::chrono::milliseconds;
 
-// Record is all that a verdict says on an event: equal strings are equal bits.
-std::string Record(const Verdicts& verdicts, std::size_t event) {
-  std::string record{static_cast<char>(verdicts.status(event)), verdicts.gate(event) ? '1' : '0'};
-  for (int h = 0; h < verdicts.block().hypotheses_size(); ++h)
-    record += verdicts.accepted(h, event) ? '1' : '0';
-  for (const Entry& entry : verdicts.entries(event)) {
-    record += "/" + std::to_string(entry.hypothesis) + "," + std::to_string(entry.beam_row) + "," +
-              std::to_string(entry.status);
-    for (std::int16_t object : entry.assignment) record += "," + std::to_string(object);
-    for (double value : entry.observables) {
-      char bytes[sizeof value];
-      std::memcpy(bytes, &value, sizeof value);
-      record.append(bytes, sizeof value);
-    }
-  }
-  return record;
+// Add adds the bits of a value.
+template <typename T>
+void Add(std::string* record, T value) {
+  char bytes[sizeof value];
+  std::memcpy(bytes, &value, sizeof value);
+  record->append(bytes, sizeof value);
+}
+
+// Add adds values with their number.
+template <typename T>
+void Add(std::string* record, const std::vector<T>& values) {
+  Add(record, values.size());
+  for (const T value : values) Add(record, value);
 }
 
 }  // namespace
+
+std::string Record(const Verdicts& verdicts, std::size_t event) {
+  std::string record;
+  Add(&record, verdicts.status(event));
+  Add(&record, verdicts.gate(event));
+  for (int h = 0; h < verdicts.block().hypotheses_size(); ++h) Add(&record, verdicts.accepted(h, event));
+  for (int g = 0; g < verdicts.block().groups_size(); ++g) Add(&record, verdicts.best(g, event));
+  for (const Entry& entry : verdicts.entries(event)) {
+    Add(&record, entry.hypothesis);
+    Add(&record, entry.beam_row);
+    Add(&record, entry.weight);
+    Add(&record, entry.status);
+    Add(&record, entry.assignment_count);
+    Add(&record, entry.assignment);
+    Add(&record, entry.observables);
+    Add(&record, entry.uncertainties);
+    Add(&record, entry.fit.has_value());
+    if (!entry.fit) continue;
+    Add(&record, entry.fit->status);
+    Add(&record, entry.fit->chi_square);
+    Add(&record, entry.fit->degrees_of_freedom);
+    Add(&record, entry.fit->probability);
+    Add(&record, entry.fit->iteration_count);
+  }
+  return record;
+}
 
 History::History(const std::string& address, const v1::JudgeOpen& open, const Sample& sample)
     : sample_(sample) {
@@ -64,8 +87,21 @@ void History::Mark() {
   waiting_ = true;
 }
 
+milliseconds History::Back() {
+  constexpr std::chrono::seconds kLongest{30};
+  const auto begun = Clock::now();
+  std::unique_lock lock(mutex_);
+  const std::size_t next = pushed_;
+  answers_.wait_for(lock, kLongest, [&] { return answered_ > next; });
+  return std::chrono::duration_cast<milliseconds>(Clock::now() - begun);
+}
+
 History::Outcome History::Check(const std::string& address, const v1::JudgeOpen& open, Run run) {
   Outcome outcome;
+  {
+    const std::lock_guard lock(mutex_);
+    pushed_ = answered_ = 0;
+  }
   run.options.on_break = [this, &outcome](const Error&) {
     const std::lock_guard lock(mutex_);
     if (!std::exchange(waiting_, false)) return;
@@ -74,7 +110,6 @@ History::Outcome History::Check(const std::string& address, const v1::JudgeOpen&
   JudgeStream stream(Gate(address), open, run.options);
   auto last = Clock::now();
   std::int64_t due = open.first_sequence();
-  std::size_t pushed = 0;
   // Handlers run one after the other on one thread, and Finish comes after the last.
   const auto push = [&](std::size_t first, std::size_t count) {
     stream.Push(MakeBlock(sample_.arrays(), first, count), [&, first, count](const Verdicts& verdicts) {
@@ -84,16 +119,20 @@ History::Outcome History::Check(const std::string& address, const v1::JudgeOpen&
       last = now;
       std::string fault = Answered(verdicts, due++, first, count);
       if (!fault.empty()) outcome.faults.push_back(std::move(fault));
+      const std::lock_guard lock(mutex_);
+      ++answered_;
+      answers_.notify_all();
     });
+    const std::lock_guard lock(mutex_);
+    ++pushed_;
   };
   try {
     bool done = false;
     for (int round = 0; !done; ++round) {
       done = run.over != nullptr ? run.over->load() : round + 1 == run.rounds;
       for (std::size_t first = 0; first < sample_.ids.size(); first += run.per_block) {
-        if (run.before) run.before(pushed);
+        if (run.before) run.before(pushed_);
         push(first, std::min(run.per_block, sample_.ids.size() - first));
-        ++pushed;
         if (run.pause.count() > 0) std::this_thread::sleep_for(run.pause);
       }
     }
@@ -106,8 +145,8 @@ History::Outcome History::Check(const std::string& address, const v1::JudgeOpen&
     }
     outcome.faults.push_back(std::string("the stream ended: ") + error.what());
   }
-  if (due - open.first_sequence() != static_cast<std::int64_t>(pushed)) {
-    outcome.faults.push_back(std::to_string(due - open.first_sequence()) + " of " + std::to_string(pushed) +
+  if (answered_ != pushed_) {
+    outcome.faults.push_back(std::to_string(answered_) + " of " + std::to_string(pushed_) +
                              " blocks were answered");
   }
   outcome.breaks = stream.break_count();

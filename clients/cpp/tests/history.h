@@ -4,6 +4,7 @@
 
 #include <atomic>
 #include <chrono>
+#include <condition_variable>
 #include <functional>
 #include <mutex>
 #include <string>
@@ -13,6 +14,9 @@
 #include "sample.h"
 
 namespace kinegate::testing {
+
+// Record is all that a verdict says on an event: equal strings are equal bits.
+std::string Record(const Verdicts& verdicts, std::size_t event);
 
 // History knows the bits of a sample's events, whatever blocks they come in.
 class History {
@@ -40,6 +44,9 @@ class History {
   Outcome Check(const std::string& address, const v1::JudgeOpen& open, Run run);
   // Mark notes the time at which something was broken.
   void Mark();
+  // Back waits until a block that is pushed from now on has its verdict, and says how long that took.
+  // Not for ever: half a minute says that it never came.
+  std::chrono::milliseconds Back();
 
   // Answered checks one verdict block that answers events [first, first + count) and was due
   // as number `sequence`; returns what is wrong, empty for nothing.
@@ -49,7 +56,9 @@ class History {
  private:
   const Sample& sample_;
   std::vector<std::string> reference_;  // of each event
-  std::mutex mutex_;
+  std::mutex mutex_;                    // guards what follows
+  std::condition_variable answers_;
+  std::size_t pushed_ = 0, answered_ = 0;  // blocks of the run
   std::chrono::steady_clock::time_point marked_{};
   bool waiting_ = false;
 };

@@ -3,12 +3,26 @@
 
 #include <cstddef>
 #include <cstdint>
+#include <limits>
+#include <optional>
 #include <string>
 #include <vector>
 
+#include "kinegate/v1/fit.pb.h"
 #include "kinegate/v1/verdict.pb.h"
 
 namespace kinegate {
+
+// Fit is the constrained fit of an entry's assignment.
+struct Fit {
+  v1::FitStatus status = v1::FIT_STATUS_UNSPECIFIED;  // how it ended; unspecified: the hypothesis has none
+  double chi_square = kNone;                          // the minimum only where the fit converged
+  int degrees_of_freedom = 0;                         // constraints less the unmeasured parameters
+  double probability = kNone;  // of a larger chi-square; NaN unless converged with a degree of freedom
+  int iteration_count = 0;     // steps
+
+  static constexpr double kNone = std::numeric_limits<double>::quiet_NaN();
+};
 
 // Entry is one accepted, or possible, combination of event, hypothesis and beam candidate.
 struct Entry {
@@ -16,8 +30,11 @@ struct Entry {
   int beam_row = -1;   // candidate within the event; -1: the hypothesis uses none
   double weight = 1;   // 1, or that of the candidate's time window
   v1::EntryStatus status = v1::ENTRY_STATUS_UNSPECIFIED;
+  int assignment_count = 0;              // assignments tried for the hypothesis
   std::vector<std::int16_t> assignment;  // object of each product; -1: none stands for it
   std::vector<double> observables;       // recorded values; NaN: not computed
+  std::vector<double> uncertainties;     // their standard deviations, NaN: none; empty: no hypothesis asks
+  std::optional<Fit> fit;                // absent: no hypothesis of the selection has one
 };
 
 // Verdicts is a verdict block. It answers for the events of one event block, in their order. An
