@@ -1,6 +1,7 @@
 #include "kinegate/gate.h"
 
 #include <grpcpp/create_channel.h>
+#include <openssl/crypto.h>
 
 #include <fstream>
 #include <sstream>
@@ -44,6 +45,10 @@ Gate::Gate(std::string address, const Tls& tls)
     throw Error("a client certificate needs both certificate_file and key_file",
                 grpc::StatusCode::INVALID_ARGUMENT);
   }
+  // As a process ends, OpenSSL would free what threads of the transport may still use, such as that
+  // of a handshake which was given up; not all of them can be waited for. Said before its first use,
+  // this has it leave everything to the system.
+  OPENSSL_init_crypto(OPENSSL_INIT_NO_ATEXIT, nullptr);
   grpc::SslCredentialsOptions options;
   options.pem_root_certs = Read(tls.ca_file);
   options.pem_cert_chain = Read(tls.certificate_file);

@@ -2,10 +2,14 @@
 #include "kinegate/judge_stream.h"
 
 #include <gtest/gtest.h>
+#include <openssl/crypto.h>
+#include <unistd.h>
 
 #include <atomic>
+#include <cstdlib>
 #include <thread>
 
+#include "blockfile.h"
 #include "history.h"
 #include "process.h"
 #include "sample.h"
@@ -43,6 +47,36 @@ TEST(JudgeStream, FuturesHoldVerdictsAndTheOpeningIsKnown) {
   EXPECT_EQ(verdicts.entries(0)[0].observables.size(), 1U);
   stream.Finish();
   EXPECT_THROW(stream.Push(MakeBlock(sample.arrays())), Error);
+}
+
+TEST(JudgeStream, EntriesCarryUncertaintiesAndFits) {
+  const std::string data = Program("RPC_CASES") + "/..";
+  Server server("", {"--selection-files", data + "/selections/two-pions.yaml"});
+  const trigger::Events events = trigger::ReadBlockFile(data + "/simulated/two-pions.kgb");
+  v1::JudgeOpen open;
+  *open.mutable_selection() = Named("two-pions");
+  open.set_entries(v1::ENTRY_DETAIL_ALL);
+  open.mutable_limits()->set_block_event_count(20);
+  open.mutable_limits()->set_block_object_count(400);
+  JudgeStream stream(Gate(server.address()), open);
+  const Verdicts verdicts = stream.Push(MakeBlock(events.arrays(), 0, 20)).get();
+  int accepted = 0;
+  for (std::size_t i = 0; i < verdicts.event_count(); ++i) {
+    for (const Entry& entry : verdicts.entries(i)) {
+      EXPECT_GE(entry.assignment_count, 1);
+      ASSERT_EQ(entry.uncertainties.size(), 2U);
+      ASSERT_TRUE(entry.fit.has_value());
+      if (entry.status != v1::ENTRY_STATUS_ACCEPTED) continue;
+      ++accepted;
+      EXPECT_GT(entry.uncertainties[0], 0);
+      EXPECT_EQ(entry.fit->status, v1::FIT_STATUS_CONVERGED);
+      EXPECT_EQ(entry.fit->degrees_of_freedom, 5);
+      EXPECT_GT(entry.fit->chi_square, 0);
+      EXPECT_EQ(entry.fit->probability, entry.observables[1]) << "which the selection records too";
+      EXPECT_GE(entry.fit->iteration_count, 1);
+    }
+  }
+  EXPECT_GT(accepted, 0);
 }
 
 TEST(JudgeStream, AFullQueueRefusesAtOnceAndWaitsOnPush) {
@@ -262,6 +296,23 @@ TEST(JudgeStream, MutualTlsOverTcp) {
   EXPECT_THROW(JudgeStream(Gate(address), OpenWith(PairSelection()), options), Error);
   EXPECT_THROW(Gate(address, Tls{folder / "none.pem", "", "", ""}), Error);
   EXPECT_THROW(Gate(address, Tls{"", folder / "client.pem", "", ""}), Error);
+}
+
+// Threads of the transport live on while a process ends, and use what OpenSSL would free then.
+TEST(JudgeStream, OpenSslIsThereUntilTheProcessIsGone) {
+  GTEST_FLAG_SET(death_test_style, "threadsafe");
+  const auto leave = [] {
+    // Registered before OpenSSL could, and so called after its own, which would end all use of it.
+    std::atexit([] { ::_exit(OPENSSL_init_crypto(0, nullptr) == 1 ? 0 : 1); });
+    const std::string nobody = "127.0.0.1:" + std::to_string(FreePort());
+    JudgeOptions options;
+    options.opening = milliseconds(300);
+    for (const Gate& gate : {Gate(nobody), Gate(nobody, Tls{})}) {
+      EXPECT_THROW(JudgeStream(gate, OpenWith(PairSelection()), options), Error);
+    }
+    std::exit(2);
+  };
+  EXPECT_EXIT(leave(), ::testing::ExitedWithCode(0), "");
 }
 
 }  // namespace

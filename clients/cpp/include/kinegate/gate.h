@@ -24,7 +24,9 @@ class Gate {
  public:
   // Plaintext reaches a server on this machine.
   explicit Gate(std::string address);
-  // TLS 1.2 or later. Throws Error where a file cannot be read or half of the pair is missing.
+  // TLS 1.2 or later. Throws Error where a file cannot be read or half of the pair is missing. A
+  // program that uses OpenSSL itself before calls OPENSSL_init_crypto(OPENSSL_INIT_NO_ATEXIT, nullptr)
+  // first of all, as is done here: threads of the transport may outlive main.
   Gate(std::string address, const Tls& tls);
 
   // Connect makes a connection of its own, shared with nobody: a dead one must not be waited
