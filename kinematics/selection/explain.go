@@ -214,6 +214,9 @@ func (w *Worker) candidateNumber(c *candidate) int {
 func (w *Worker) obstacle() string {
 	h := w.hypothesis
 	if !w.findCandidates() {
+		if w.block.Beam == nil {
+			return "the events have no beam columns"
+		}
 		first, end := w.block.Candidates(w.index)
 		return fmt.Sprintf("none of the event's %d beam candidates lies in a time window", end-first)
 	}

@@ -147,7 +147,7 @@ func (s *eventSource) openNext() error {
 		return badInput("%w", err)
 	}
 	s.file = file
-	if strings.EqualFold(filepath.Ext(name), eventfile.Extension) {
+	if isBlockFile(name) {
 		s.blocks = eventfile.NewBlockReader(counted{file, &s.read})
 		return nil
 	}
@@ -156,6 +156,9 @@ func (s *eventSource) openNext() error {
 	}
 	return nil
 }
+
+// isBlockFile reports whether a file is one of blocks by its name.
+func isBlockFile(name string) bool { return strings.EqualFold(filepath.Ext(name), eventfile.Extension) }
 
 // counted counts the bytes read.
 type counted struct {

@@ -42,6 +42,7 @@ func judgeCommand(p program) *cobra.Command {
 		Args: usage(cobra.MinimumNArgs(1)),
 		RunE: func(c *cobra.Command, args []string) error {
 			j.explaining = c.Flags().Changed("explain")
+			j.blocksAsked = c.Flags().Changed("block-events")
 			return j.run(c.Context(), args)
 		},
 	}
@@ -49,14 +50,15 @@ func judgeCommand(p program) *cobra.Command {
 	f := c.Flags()
 	f.StringVar(&j.selectionFile, "selection", "", "selection file (YAML); required")
 	f.StringVar(&j.outFile, "out", "", "write one row per event with its verdicts to this file: .csv or .parquet")
-	f.StringVar(&j.entries, "entries", "", "accepted or all: write one row per entry in place of one per event,\nwith its beam candidate, weights, fit and objects")
+	f.StringVar(&j.entries, "entries", "",
+		"accepted or all: write one row per entry in place of one per event,\nwith its beam candidate, weights, fit and objects")
 	f.StringArrayVar(&j.compare, "compare", nil, "compare a column with a recorded observable, as COLUMN=NAME/LABEL; NAME is a hypothesis or a group")
 	f.StringArrayVar(&j.histograms, "histogram", nil, `draw a recorded observable, as NAME/LABEL=LOW:HIGH:BINS`)
 	f.StringVar(&j.assume, "assume-resolution", "",
 		`resolution of momentum and direction for files without the covariances that fits need, as "PART:ANGLE", such as "1.5 %:1 mrad"`)
-	f.Int64Var(&j.explain, "explain", 0, "explain the verdict on the event of this id, and judge no other")
+	f.StringVar(&j.explain, "explain", "", "explain the verdict on one event, as EVENT or RUN:EVENT, and judge no other")
 	f.IntVar(&j.assignments, "assignments", 3, "assignments to show for a hypothesis with --explain, 1 to 1000") //nolint:mnd // a default
-	f.IntVar(&j.blockEvents, "block-events", 1000, "events per block, 1 to 4096")
+	f.IntVar(&j.blockEvents, "block-events", 1000, "events per block of .csv, and most events of a block of .kgb; 1 to 4096")
 	f.StringVar(&j.gateAddress, "gate-address", "", "server for the judge stream, if not that of --address")
 	return c
 }
@@ -70,10 +72,11 @@ type judgeRun struct {
 	entries             string
 	compare, histograms []string
 	blockEvents         int
+	blocksAsked         bool
 
 	assume      string
 	explaining  bool
-	explain     int64
+	explain     string
 	assignments int
 
 	checked *kinegatev1.CheckSelectionResponse
@@ -117,6 +120,9 @@ func (j *judgeRun) run(ctx context.Context, files []string) error {
 	sinks, err := j.sinks()
 	if err != nil {
 		return err
+	}
+	if !j.json && j.blocksAsked && slices.ContainsFunc(files, isBlockFile) {
+		j.print("the blocks of .kgb files are judged as they are; --block-events bounds them")
 	}
 	sums := newTally(j.checked.GetHypotheses())
 	why := &reasons{}
@@ -183,6 +189,9 @@ func (j *judgeRun) blocks(source *eventSource) (next func() (*batch[eventfile.Ev
 		if err != nil {
 			return nil, err
 		}
+		if b.block.GetCovariance() != nil {
+			return nil, badInput("--assume-resolution: the events of %s have covariances of their own", source.file.Name())
+		}
 		return b, assumed.fill(b.block)
 	}, nil
 }
@@ -248,7 +257,16 @@ func (j *judgeRun) report(sums *tally, why *reasons, sinks []sink, elapsed time.
 		}
 	}
 	if !j.json && elapsed > 0 {
-		j.print("\n  %.0f events/s including reading", float64(sums.events)/elapsed.Seconds())
+		j.print("\n  %s events/s including reading", rateText(float64(sums.events)/elapsed.Seconds()))
 	}
 	return nil
+}
+
+// rateText is a rate in whole numbers, or in two digits where it is small.
+func rateText(perSecond float64) string {
+	const small = 10
+	if perSecond < small {
+		return fmt.Sprintf("%.2g", perSecond)
+	}
+	return fmt.Sprintf("%.0f", perSecond)
 }

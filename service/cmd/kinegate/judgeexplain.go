@@ -2,15 +2,11 @@ package main
 
 import (
 	"context"
-	"errors"
 	"fmt"
-	"io"
-	"slices"
 	"strconv"
 	"strings"
 
 	kinegate "example.org/kinegate/clients/go"
-	"example.org/kinegate/proto/column"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 	"example.org/kinegate/service/cmd/kinegate/internal/eventfile"
 	"example.org/kinegate/service/cmd/kinegate/internal/text"
@@ -23,38 +19,43 @@ func (j *judgeRun) explainEvent(
 	if j.assignments < 1 || j.assignments > 1000 {
 		return badInput("--assignments %d: 1 to 1000 are allowed", j.assignments)
 	}
-	for {
-		b, err := next()
-		if errors.Is(err, io.EOF) {
-			return badInput("no event %d in %s", j.explain, strings.Join(files, ", "))
-		}
-		if err != nil {
-			return err
-		}
-		ids, err := column.Int64s(b.block.GetEventIds())
-		if err != nil {
-			return err
-		}
-		at := slices.Index(ids, j.explain)
-		if at < 0 {
-			continue
-		}
-		ctx, cancel := j.calling(ctx)
-		defer cancel()
-		reply, err := client.Selections.ExplainVerdict(ctx, &kinegatev1.ExplainVerdictRequest{
-			Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Given{Given: j.checked.GetSelection()}},
-			Block:     b.block, EventIndex: int32(at), MaxAssignmentCount: int64(j.assignments), //nolint:gosec // at most 4,096
-		})
-		if err != nil {
-			return err
-		}
-		return j.tell(reply, func() error { return j.printExplanation(reply, j.checked.GetSelection()) })
+	wanted, err := parseEventName(j.explain)
+	if err != nil {
+		return err
 	}
+	found, err := wanted.find(next)
+	if err != nil {
+		return err
+	}
+	switch len(found) {
+	case 0:
+		return badInput("no event %s in %s", j.explain, strings.Join(files, ", "))
+	case 1:
+	default:
+		return badInput("--explain %s: %s have an event of that number; choose one, such as --explain %d:%d",
+			j.explain, runNames(found), found[0].run, wanted.event)
+	}
+	one := found[0]
+	ctx, cancel := j.calling(ctx)
+	defer cancel()
+	reply, err := client.Selections.ExplainVerdict(ctx, &kinegatev1.ExplainVerdictRequest{
+		Selection: &kinegatev1.SelectionSource{Source: &kinegatev1.SelectionSource_Given{Given: j.checked.GetSelection()}},
+		Block:     one.block, EventIndex: int32(one.at), MaxAssignmentCount: int64(j.assignments), //nolint:gosec // at most 4,096
+	})
+	if err != nil {
+		return err
+	}
+	return j.tell(reply, func() error {
+		if one.count > 1 {
+			j.print("the files have run %d, event %d %d times; this is the first", one.run, wanted.event, one.count)
+		}
+		return j.printExplanation(one.run, reply, j.checked.GetSelection())
+	})
 }
 
 // printExplanation prints why an event was judged as it was.
-func (e *environment) printExplanation(r *kinegatev1.ExplainVerdictResponse, of *kinegatev1.Selection) error {
-	e.print("event %d: %s; the gate %s", r.GetEventId(), words(r.GetStatus().String(), "EVENT_STATUS_"), gateWords(r))
+func (e *environment) printExplanation(run int64, r *kinegatev1.ExplainVerdictResponse, of *kinegatev1.Selection) error {
+	e.print("run %d, event %d: %s; the gate %s", run, r.GetEventId(), words(r.GetStatus().String(), "EVENT_STATUS_"), gateWords(r))
 	for k, h := range r.GetHypotheses() {
 		e.print("")
 		e.print("hypothesis %s: %s", h.GetName(), h.GetReaction())

@@ -53,6 +53,52 @@ func TestJudgeExplain(t *testing.T) {
 	}
 }
 
+// TestExplainChoosesAmongRuns: an id that several runs have is explained only where the run
+// is named, and nothing that was asked for is passed over in silence.
+func TestExplainChoosesAmongRuns(t *testing.T) {
+	t.Parallel()
+	selection := write(t, "pair.yaml", `name: pair
+hypotheses:
+  - name: pair
+    reaction: "gamma p -> p gamma gamma"
+    measurements: [{product: p, measurement: MEASUREMENT_MISSING}]
+    beam: {tagged: {}}
+    extra_objects: {any: {}}
+`)
+	const photons = ",photon,1,0.5,0,photon,1,0.4,1\n"
+	head := "run,event,class1,p1,theta1,phi1,class2,p2,theta2,phi2\n"
+	file := write(t, "runs.csv", head+"1,4"+photons+"-2,4"+photons+"-2,4"+photons+"3,5"+photons)
+	many := write(t, "many.csv", head+"1,4"+photons+"2,4"+photons+"3,4"+photons+"4,4"+photons+"5,4"+photons+"6,4"+photons+"7,4"+photons)
+	judge := "judge --selection " + selection + " " + file
+	for _, c := range []struct {
+		arguments string
+		code      int
+		says      string
+	}{
+		{judge + " --explain 4", exitUsage, "run 1 and run -2 have an event of that number; choose one, such as --explain 1:4"},
+		{"judge --selection " + selection + " " + many + " --explain 4", exitUsage, "run 4, run 5 and 2 more have an event"},
+		{judge + " --explain 1:4", exitWell, "run 1, event 4: judged"},
+		{judge + " --explain -2:4", exitWell, "the files have run -2, event 4 2 times; this is the first\nrun -2, event 4: judged"},
+		{judge + " --explain 5", exitWell, "run 3, event 5: judged"},
+		{judge + " --explain 1:5", exitUsage, "no event 1:5 in"},
+		{judge + " --explain abc", exitUsage, `--explain "abc": EVENT or RUN:EVENT is needed`},
+		{judge + " --explain 1:2:3", exitUsage, "EVENT or RUN:EVENT is needed"},
+		{judge + ` --explain ""`, exitUsage, "EVENT or RUN:EVENT is needed"},
+		{judge + " --explain 5", exitWell, "does not accept the event: the events have no beam columns"},
+		{judge, exitWell, "no assignment: the events have no beam columns"},
+		{"judge --selection " + pionsSelection + " " + pionsEvents + ` --assume-resolution "1 %:1 mrad"`, exitUsage, "two-pions.kgb have covariances of their own"},
+		{"judge --selection " + pionsSelection + " " + pionsEvents + " --block-events 500", exitWell, "the blocks of .kgb files are judged as they are"},
+		{"judge --selection " + pionsSelection + " " + pionsEvents + " --block-events 50", exitUsage, "--block-events allows 50"},
+	} {
+		wantCommand(t, c.arguments, c.code, c.says)
+	}
+	for rate, want := range map[float64]string{0.034: "0.034", 9.94: "9.9", 10.4: "10", 48731: "48731"} {
+		if got := rateText(rate); got != want {
+			t.Errorf("%g a second are %q, want %q", rate, got, want)
+		}
+	}
+}
+
 // TestJudgeWithoutBudget reads what is said of events whose work budget ends, and of the best
 // assignment of one that fails.
 func TestJudgeWithoutBudget(t *testing.T) {

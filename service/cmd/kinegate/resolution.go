@@ -47,9 +47,6 @@ func parseResolution(text string) (*resolution, error) {
 //	angles:      (r p)^2,  a^2,  (a/sin theta)^2
 //	transverse:  pt^2 (r^2 + a^2 sinh^2 eta),  -pt a^2 sinh eta cosh eta,  (a cosh eta)^2,  (a cosh eta)^2
 func (r *resolution) fill(block *kinegatev1.EventBlock) error {
-	if block.GetCovariance() != nil {
-		return nil
-	}
 	var columns [3][]float64
 	read := func(raw ...[]byte) (err error) {
 		for k := range columns {
