@@ -80,6 +80,9 @@ class AsyncClient:
         self._stubs = Stubs(self._channel)
         self._streams: weakref.WeakSet[AsyncJudgeStream] = weakref.WeakSet()
 
+    def __repr__(self) -> str:
+        return f"<asyncio {self._guard} of {self._target}>"
+
     async def __aenter__(self) -> Self:
         return self
 
@@ -255,6 +258,9 @@ class AsyncJudgeStream:
         self._pump: _Pump | None = None
         self._bar: Bar | None = None
 
+    def __repr__(self) -> str:
+        return f"<asyncio judge stream: {self._pump.protocol if self._pump else 'not begun'}>"
+
     def __aiter__(self) -> Self:
         return self
 
@@ -295,6 +301,11 @@ class AsyncJudgeStream:
         if self._bar:
             self._bar.close()
             self._bar = None
+
+    @property
+    def digest(self) -> str:
+        """Digest of the selection that judges, in hexadecimal; empty before the first block."""
+        return self._pump.protocol.digest if self._pump else ""
 
     @property
     def reconnects(self) -> int:

@@ -68,6 +68,8 @@ class Client:
     :class:`kinegate.ServerError`. A client may be used from several threads. It can be
     pickled, which is how it travels to spawned processes: there it connects anew.
 
+    >>> client
+    <client of 127.0.0.1:..., judging at 127.0.0.1:...>
     >>> client.reaction("gamma p -> K+ Lambda", beam="1.2 GeV").is_open
     True
     """
@@ -81,6 +83,9 @@ class Client:
 
     def __reduce__(self) -> tuple[object, ...]:
         return Client, (self._target,)
+
+    def __repr__(self) -> str:
+        return f"<{self._guard} of {self._target}>"
 
     def __enter__(self) -> Self:
         return self

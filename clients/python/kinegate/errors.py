@@ -224,23 +224,53 @@ class DeadlineExceeded(ServerError):
 
 
 class Cancelled(ServerError):
-    """The call was given up."""
+    """The call was given up.
+
+    >>> generation = {"channels": [{"reaction": "pi0 -> gamma gamma"}]}
+    >>> with server.connect() as leaving:
+    ...     blocks = iter(leaving.generate(generation, 1_000_000))
+    ...     _ = next(blocks)
+    >>> next(blocks)  # the client was closed before the end
+    Traceback (most recent call last):
+    kinegate.errors.Cancelled: ...
+    """
 
 
 class PermissionDenied(ServerError):
-    """The caller's identity may not call the method."""
+    """The caller's identity may not call the method.
+
+    >>> error = kinegate.PermissionDenied(
+    ...     "spiffe://hall/shift may not call Judge", "PERMISSION_DENIED", "CALLER_NOT_ALLOWED")
+    >>> error.reason, error.retryable
+    ('CALLER_NOT_ALLOWED', False)
+    """
 
 
 class Unauthenticated(ServerError):
-    """The server asks for a certificate that the caller did not show."""
+    """The server knows its callers by certificate, and the caller's names nobody.
+
+    >>> error = kinegate.Unauthenticated("no identity", "UNAUTHENTICATED", "CALLER_UNKNOWN")
+    >>> error.reason, error.retryable
+    ('CALLER_UNKNOWN', False)
+    """
 
 
 class Unimplemented(ServerError):
-    """The server does not know the method; it may be older than this client."""
+    """The server does not know the method; it may be older than this client.
+
+    >>> error = kinegate.Unimplemented("no such method", "UNIMPLEMENTED", "METHOD_UNKNOWN")
+    >>> error.reason, error.retryable
+    ('METHOD_UNKNOWN', False)
+    """
 
 
 class Internal(ServerError):
-    """A fault of the server; the message carries the reference number of its log."""
+    """A fault of the server; the message carries the reference number of its log.
+
+    >>> error = kinegate.Internal("fault 17cd3e46-2", "INTERNAL", "INTERNAL_FAULT")
+    >>> error.reason, error.retryable
+    ('INTERNAL_FAULT', False)
+    """
 
 
 class BlockRejected(InvalidArgument):

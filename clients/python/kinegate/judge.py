@@ -167,6 +167,12 @@ class Protocol:
         """Blocks added and not answered."""
         return len(self._waiting)
 
+    def __str__(self) -> str:
+        answered = self._next - self.settings.first_sequence - len(self._waiting)
+        again = f", {self.reconnects} streams opened again" if self.reconnects else ""
+        late = f", {self.late_count} late events" if self.late_count else ""
+        return f"{answered} blocks answered, {len(self._waiting)} waiting{again}{late}"
+
     @property
     def window(self) -> int:
         """Blocks that may be on their way or taken by nobody yet."""

@@ -37,14 +37,17 @@ class LocalServer:
     alone the other, and the system closes that with the process, by whatever signal.
 
     >>> with kinegate.start_server() as local:
-    ...     local.address
-    '127.0.0.1:...'
+    ...     local
+    <server at 127.0.0.1:..., judging at 127.0.0.1:...>
+    >>> local
+    <server that ended with 0>
     """
 
     def __init__(self, command: Sequence[str], wait: float) -> None:
         self._guard = ProcessGuard("server")
         self.process = subprocess.Popen(  # noqa: S603  # the program that the caller named
             command,
+            env=_environment(),
             stdin=subprocess.PIPE,
             stdout=subprocess.PIPE,
             stderr=subprocess.STDOUT,
@@ -110,6 +113,12 @@ class LocalServer:
         if self.process.stdout is not None and not self._reader.is_alive():
             self.process.stdout.close()
 
+    def __repr__(self) -> str:
+        ended = self.process.poll()
+        if ended is not None:
+            return f"<server that ended with {ended}>"
+        return f"<server at {self.address}, judging at {self.gate_address}>"
+
     def __enter__(self) -> Self:
         return self
 
@@ -140,6 +149,15 @@ class LocalServer:
             self._changed.notify_all()
 
 
+def _environment() -> dict[str, str]:
+    """Return the environment without the settings of other servers.
+
+    A server takes every variable KINEGATE_... for a setting of its own, and refuses to start on one
+    that it does not know; those of this process are meant for another server or another purpose.
+    """
+    return {k: v for k, v in os.environ.items() if not k.startswith("KINEGATE_")}
+
+
 def _let_go_of_all() -> None:
     """Leave the servers of a parent to it: a forked child must not hold their pipes."""
     for server in list(_running):
@@ -159,6 +177,9 @@ def start_server(
     wait: float = 10.0,
 ) -> LocalServer:
     """Start a server on free loopback ports of this machine.
+
+    Its settings are the arguments alone: environment variables KINEGATE_..., which may be meant
+    for another server, are not passed on. `arguments=["--config", "file.yaml"]` names a file.
 
     Args:
         program: The `kinegate` program. By default that of the environment variable

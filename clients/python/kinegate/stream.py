@@ -58,6 +58,9 @@ class JudgeStream:
         self._finalizer = weakref.finalize(self, self._pump.close)
         self._pump.start(settings.blocks(events))
 
+    def __repr__(self) -> str:
+        return f"<judge stream: {self._pump.protocol}>"
+
     def __iter__(self) -> Self:
         return self
 

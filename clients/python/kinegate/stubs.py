@@ -33,6 +33,8 @@ _FIELDS: Final = {
 class Stubs:
     """One generated stub a service; on an asyncio channel their calls are awaited.
 
+    >>> client.stubs
+    <stubs particle, reaction, decay, photon, generation, selection, info>
     >>> from kinegate.v1 import particle_pb2
     >>> request = particle_pb2.GetParticleRequest(name="p")
     >>> client.stubs.particle.GetParticle(request, timeout=10).particle.mass_gev
@@ -56,6 +58,9 @@ class Stubs:
         """SelectionService."""
         self.info = info_pb2_grpc.InfoServiceStub(plain)
         """InfoService."""
+
+    def __repr__(self) -> str:
+        return f"<stubs {', '.join(_FIELDS.values())}>"
 
     def rpc(self, service: str, method: str) -> Any:
         """Return the callable of one rpc by the names of the contract."""

@@ -126,6 +126,11 @@ class Target:
         """Return this target with another deadline."""
         return replace(self, timeout=seconds)
 
+    def __str__(self) -> str:
+        if self.gate_address == self.address:
+            return self.address
+        return f"{self.address}, judging at {self.gate_address}"
+
     def channel(self, address: str) -> grpc.Channel:
         """Open a channel for synchronous calls."""
         if (credentials := self._credentials()) is None:
@@ -165,6 +170,9 @@ class ProcessGuard:
         self._owner = os.getpid()
         self._what = what
         self._closed = False
+
+    def __str__(self) -> str:
+        return f"{'closed ' if self._closed else ''}{self._what}"
 
     @property
     def foreign(self) -> bool:

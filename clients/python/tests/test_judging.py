@@ -57,6 +57,36 @@ def test_measured_four_lepton_masses(client: kinegate.Client, testdata: Path, na
             assert np.abs(found.values[winners] / printed - 1).max() < 1e-4
 
 
+def test_both_streams_show_the_same() -> None:
+    one, other = (
+        {name for name in vars(kind) if not name.startswith("_")}
+        for kind in (kinegate.JudgeStream, kinegate.AsyncJudgeStream)
+    )
+    assert one == other
+
+
+def test_streams_show_themselves(
+    server: kinegate.LocalServer, dimuons: Events, dimuon: kinegate.Selection
+) -> None:
+    shown = "judge stream: 3 blocks answered, 0 waiting>"
+    with server.connect() as client:
+        stream = client.judge(dimuons, dimuon)
+        assert len(list(stream)) == 3
+        assert repr(stream) == f"<{shown}"
+
+    async def judge() -> None:
+        address, gate = server.address, server.gate_address
+        async with kinegate.connect_async(address, gate_address=gate) as client:
+            stream = client.judge(dimuons, dimuon)
+            assert (stream.digest, repr(stream)) == ("", "<asyncio judge stream: not begun>")
+            assert len([v async for _, v in stream]) == 3
+            assert (stream.digest, repr(stream)) == (dimuon.digest, f"<asyncio {shown}")
+            assert repr(client) == f"<asyncio client of {address}, judging at {gate}>"
+        assert repr(client).startswith("<asyncio closed client of")
+
+    asyncio.run(judge())
+
+
 def test_block_size_does_not_matter(
     client: kinegate.Client, dimuons: Events, dimuon: kinegate.Selection
 ) -> None:

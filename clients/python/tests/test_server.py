@@ -48,6 +48,16 @@ def test_server_ends_with_a_killed_process(method: str, how: signal.Signals) -> 
                 os.kill(process, signal.SIGKILL)
 
 
+def test_settings_of_another_server_are_not_passed_on(monkeypatch: pytest.MonkeyPatch) -> None:
+    for name in ("KINEGATE_TOOLS", "KINEGATE_CONFIG", "KINEGATE_GATE_ADDRESS"):
+        monkeypatch.setenv(name, "/no such thing")
+    monkeypatch.setenv("LC_OF_THE_CALLER", "kept")
+    with kinegate.start_server() as server, server.connect() as client:
+        assert client.particle("p").name == "p"
+        environment = Path(f"/proc/{server.process.pid}/environ").read_bytes().split(b"\0")
+    assert b"LC_OF_THE_CALLER=kept" in environment
+
+
 def test_a_stopped_server_ends_gracefully() -> None:
     with kinegate.start_server() as server:
         pass
