@@ -1,4 +1,5 @@
-// Package kinegate is the Go client of a kinegate server.
+// Package kinegate is the Go client of a kinegate server. README.md beside it says how to
+// import it, which go get cannot.
 //
 // Dial connects over TCP, TLS or a unix socket. The fields of a Client are the plain
 // generated clients, one a service: every unary call has a deadline, waits for a server to
