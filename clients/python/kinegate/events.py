@@ -13,6 +13,7 @@ import numpy as np
 
 from kinegate import arrow, columns, csvfile, frames
 from kinegate.arguments import array, integer
+from kinegate.coordinates import COORDINATES, MASKS
 from kinegate.errors import ArgumentError, UsageError, shortened
 from kinegate.parts import (
     BeamCandidates,
@@ -43,17 +44,7 @@ NEGATIVE: Final = int(event_pb2.OBJECT_CLASS_NEGATIVE)
 NEUTRAL: Final = int(event_pb2.OBJECT_CLASS_NEUTRAL)
 """Class of a neutral object that is no photon."""
 
-COORDINATES: Final[Mapping[str, tuple[str, ...]]] = {
-    "energy_momentum": ("energy_gev", "px_gev", "py_gev", "pz_gev"),
-    "momentum_mass": ("px_gev", "py_gev", "pz_gev", "mass_gev"),
-    "transverse_momentum": ("transverse_momentum_gev", "pseudorapidity", "phi_rad", "mass_gev"),
-    "momentum_angles": ("momentum_gev", "theta_rad", "phi_rad"),
-    "momentum_slopes": ("momentum_gev", "slope_x", "slope_y"),
-}
-"""The coordinate sets with their columns, such as momentum_mass: px_gev, py_gev, ..."""
-
 _TRIANGLE: Final = 6  # elements of a symmetric matrix of three parameters
-_MASKS: Final = ("measured_mask", "species_mask")
 _PARTS: Final[Mapping[str, type[Part]]] = {
     "beam": BeamCandidates,
     "vertex": Vertices,
@@ -176,7 +167,7 @@ class Events:
             raise ArgumentError(
                 f"offsets end at {self.offsets[-1]}, but there are {objects} objects"
             )
-        rows = dict.fromkeys((*self.values, *_MASKS, "covariance"), objects)
+        rows = dict.fromkeys((*self.values, *MASKS, "covariance"), objects)
         rows |= {"event_ids": events, **dict.fromkeys(self.extra, events)}
         for name, needed in rows.items():
             column = self._column(name)
@@ -220,7 +211,7 @@ class Events:
         raise UsageError("iterate over events.blocks(), or over columns")
 
     def __repr__(self) -> str:
-        parts = [n for n in (*_MASKS, "covariance", *_PARTS) if getattr(self, n) is not None]
+        parts = [n for n in (*MASKS, "covariance", *_PARTS) if getattr(self, n) is not None]
         carries = f", with {', '.join(parts)}" if parts else ""
         return f"<{len(self)} events, {len(self.classes)} objects in {self.coordinates}{carries}>"
 
@@ -235,7 +226,7 @@ class Events:
         events = slice(start, max(start, stop))
         offsets, objects = cut_offsets(self.offsets, events)
         cut: dict[str, Any] = {}
-        for name in (*_MASKS, "covariance"):
+        for name in (*MASKS, "covariance"):
             column = getattr(self, name)
             cut[name] = None if column is None else column[objects]
         for name in _PARTS:
@@ -295,7 +286,7 @@ class Events:
         coordinates.SetInParent()
         for name, column in self.values.items():
             setattr(coordinates, name, columns.encode(column, np.float64))
-        for name in _MASKS:
+        for name in MASKS:
             if (mask := getattr(self, name)) is not None:
                 getattr(block, name).SetInParent()
                 getattr(block, name).masks = columns.encode(mask, np.uint8)
@@ -319,7 +310,7 @@ class Events:
         coordinates = getattr(block, chosen)
         present = {f.name: value for f, value in block.ListFields()}
         optional: dict[str, Any] = {
-            name: columns.view(present[name].masks, np.uint8) for name in _MASKS if name in present
+            name: columns.view(present[name].masks, np.uint8) for name in MASKS if name in present
         }
         optional |= {name: _PARTS[name].read(present[name]) for name in _PARTS if name in present}
         if "covariance" in present:
@@ -354,7 +345,7 @@ class Events:
             raise ArgumentError("samples to join must be there, and in one coordinate set")
         first = samples[0]
         optional: dict[str, Any] = {}
-        for name in (*_MASKS, "covariance", *_PARTS):
+        for name in (*MASKS, "covariance", *_PARTS):
             found = [getattr(s, name) for s in samples]
             if all(f is not None for f in found):
                 join = _PARTS[name].join if name in _PARTS else np.concatenate
@@ -375,10 +366,31 @@ class Events:
     def to_pandas(self) -> Any:
         """Return a pandas DataFrame of the objects, indexed by event id and object.
 
-        >>> Events.read_csv("testdata/open/dimuon_2011A.csv").to_pandas().shape
-        (6000, 5)
+        Coordinates, class and masks are columns. An event without objects has no row.
+
+        >>> Events.read_csv("testdata/open/dimuon_2011A.csv").to_pandas().columns.to_list()
+        ['px_gev', 'py_gev', 'pz_gev', 'mass_gev', 'class', 'species_mask']
         """
         return frames.events_to_pandas(self)
+
+    @classmethod
+    def from_pandas(cls, frame: Any) -> Self:
+        """Make events from a pandas DataFrame of one row an object.
+
+        Columns and levels of the index are known by their names: `event_id`; `object`, the
+        place in the event from 0, needed only where an event id stands for several events;
+        `class`, one of the constants of this module; the columns of one coordinate set, in
+        GeV and radian as they are called; `measured_mask` and `species_mask` where there are
+        any. The rows of an event follow one another. Other columns are left out.
+
+        >>> import pandas
+        >>> frame = pandas.DataFrame({
+        ...     "event_id": [7, 7, 9], "class": PHOTON, "momentum_gev": [0.5, 0.7, 0.4],
+        ...     "theta_rad": [0.3, 1.2, 0.7], "phi_rad": [0.1, 3.0, 0.2]})
+        >>> Events.from_pandas(frame)
+        <2 events, 3 objects in momentum_angles>
+        """
+        return cls.of(**frames.events_from_frame(frame))
 
     def to_arrow(self) -> Any:
         """Return an Arrow table of one row an event, with lists of its objects inside.
@@ -393,15 +405,30 @@ class Events:
 
     @classmethod
     def from_arrow(cls, table: Any) -> Self:
-        """Make events from an Arrow table as :meth:`to_arrow` makes it."""
-        return cls.of(**arrow.events_from_table(table, COORDINATES, _PARTS))
+        """Make events from an Arrow table of one row an event, as :meth:`to_arrow` makes it.
+
+        A table from elsewhere will do, by the names of its columns: `class`, lists of the
+        constants of this module; the columns of one coordinate set, lists as long, in GeV and
+        radian as they are called; `event_id`, else events are counted from 0. `measured_mask`,
+        `species_mask`, `covariance` (lists of six numbers an object), columns of parts such as
+        `beam_energy_gev`, and numbers `extra_...` go along where they are there. Other columns
+        are left out.
+
+        >>> import pyarrow
+        >>> table = pyarrow.table({
+        ...     "class": [[PHOTON, PHOTON], [PHOTON]], "momentum_gev": [[0.5, 0.7], [0.4]],
+        ...     "theta_rad": [[0.3, 1.2], [0.7]], "phi_rad": [[0.1, 3.0], [0.2]]})
+        >>> Events.from_arrow(table)
+        <2 events, 3 objects in momentum_angles>
+        """
+        return cls.of(**arrow.events_from_table(table, _PARTS))
 
 
 def _member(name: str, value: Any) -> Any:
     """Read what is no coordinate: optional columns, parts, and what travels along."""
     if value is None:
         return None
-    if name in _MASKS:
+    if name in MASKS:
         return array(name, value, np.uint8)
     if name == "covariance":
         column = array(name, value, np.float64)

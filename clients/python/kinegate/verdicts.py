@@ -328,6 +328,16 @@ class Verdicts:
         """Return a pandas DataFrame of the events: status, gate, acceptance, best."""
         return frames.verdicts_to_pandas(self)
 
+    def to_arrow(self) -> Any:
+        """Return an Arrow table of the events: event_id, status, gate, acceptance, best.
+
+        >>> sample = kinegate.Events.read_csv("testdata/open/dimuon_2011A.csv").cut(0, 100)
+        >>> verdict = client.judge_block(sample, "testdata/selections/dimuon.yaml")
+        >>> verdict.to_arrow().column_names[:4]
+        ['event_id', 'status', 'gate', 'accepted dimuon']
+        """
+        return frames.verdicts_to_arrow(self)
+
     def entries_to_pandas(self) -> Any:
         """Return a pandas DataFrame of the entries, observables as columns."""
         return frames.entries_to_pandas(self)

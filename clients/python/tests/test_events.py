@@ -164,6 +164,95 @@ def test_pandas_has_a_row_for_each_object() -> None:
     assert counts.sum() == events.offsets[-1]
 
 
+def test_pandas_there_and_back() -> None:
+    whole = sample()
+    filled = np.flatnonzero(np.diff(whole.offsets))
+    again = Events.from_pandas(whole.to_pandas())
+    assert again.event_ids.tolist() == whole.event_ids[filled].tolist()
+    assert np.diff(again.offsets).tolist() == np.diff(whole.offsets)[filled].tolist()
+    for name in whole.values:
+        assert (again[name] == whole[name]).all()
+    for column in ("classes", "measured_mask", "species_mask"):
+        assert (getattr(again, column) == getattr(whole, column)).all()
+    plain = whole.to_pandas().reset_index().drop(columns="object").assign(comment="mine")
+    same(Events.from_pandas(plain), again)
+
+
+def test_pandas_with_an_event_id_for_several_events() -> None:
+    pandas = pytest.importorskip("pandas")
+    columns = {"class": 1, "momentum_gev": 1.0, "theta_rad": 0.1, "phi_rad": 0.2}
+    frame = pandas.DataFrame({"event_id": [5, 5, 5, 6], "object": [0, 1, 0, 0], **columns})
+    assert Events.from_pandas(frame).event_ids.tolist() == [5, 5, 6]
+    assert Events.from_pandas(frame.set_index(["event_id", "object"])).offsets.tolist() == [
+        *(0, 2, 3, 4)
+    ]
+
+
+@pytest.mark.parametrize(
+    ("change", "complaint"),
+    [
+        ({"event_id": [5, 6, 5]}, "do not follow one another"),
+        ({"object": [0, 1, 1]}, "do not follow one another"),
+        ({"object": [1, 0, 1]}, "do not follow one another"),
+        ({"event_id": [5, 6, 6], "object": [0, 1, 0]}, "do not follow one another"),
+        ({"class": None}, "no column class; beside event_id, class the columns of one"),
+        ({"event_id": None, "phi_rad": None}, "no column event_id, phi_rad"),
+        ({"theta_rad": ["a", "b", "c"]}, "theta_rad"),
+        ({"event_id": [1.5, 2, 2]}, "event_id: .* whole numbers"),
+    ],
+)
+def test_pandas_faults(change: dict[str, Any], complaint: str) -> None:
+    pandas = pytest.importorskip("pandas")
+    columns = {"event_id": 1, "class": 1, "momentum_gev": 1.0, "theta_rad": 0.1, "phi_rad": 0.2}
+    given = {k: v for k, v in {**columns, **change}.items() if v is not None}
+    with pytest.raises(kinegate.ArgumentError, match=complaint):
+        Events.from_pandas(pandas.DataFrame(given, index=range(3)))
+
+
+def test_arrow_table_from_elsewhere(tmp_path: Path) -> None:
+    arrow = pytest.importorskip("pyarrow")
+    parquet = pytest.importorskip("pyarrow.parquet")
+    whole = sample()
+    bare = whole.to_arrow().replace_schema_metadata(None)
+    again = Events.from_arrow(bare)
+    assert again.run_number == 0
+    assert again.to_message().momentum_mass == whole.to_message().momentum_mass
+    # As other programs write it: long offsets, single precision, no ids, a column of their own.
+    lists = {"px_gev": [[1, 2], [], [3]], "py_gev": [[1, 2], [], [3]], "pz_gev": [[1, 2], [], [3]]}
+    columns = {n: arrow.array(v, arrow.large_list(arrow.float32())) for n, v in lists.items()}
+    columns |= {"mass_gev": arrow.array([[0, 0], [], [0]]), "class": arrow.array([[1, 1], [], [2]])}
+    columns["comment"] = arrow.array(["a", "b", "c"])
+    parquet.write_table(arrow.table(columns), tmp_path / "other.parquet")
+    other = Events.from_arrow(parquet.read_table(tmp_path / "other.parquet"))
+    assert other.offsets.tolist() == [0, 2, 2, 3]
+    assert other.event_ids.tolist() == [0, 1, 2]
+    assert other["pz_gev"].tolist() == [1, 2, 3]
+    # Lists of fixed length, six of them, which are no triangles.
+    six = arrow.array([[1.0] * 6] * 2, arrow.list_(arrow.float64(), 6))
+    fixed = {"class": six.cast(arrow.list_(arrow.int8(), 6)), "momentum_gev": six}
+    fixed |= {"theta_rad": six, "phi_rad": six}
+    assert Events.from_arrow(arrow.table(fixed)).offsets.tolist() == [0, 6, 12]
+
+
+@pytest.mark.parametrize(
+    ("change", "complaint"),
+    [
+        ({"class": None}, "no column class; beside class the columns of one coordinate set"),
+        ({"phi_rad": None, "theta_rad": None}, "no column .*, .*; beside class"),
+        ({"phi_rad": [[0.1], [0.2, 0.3]]}, "phi_rad: its lists are not as long"),
+        ({"phi_rad": [0.1, 0.2]}, "phi_rad: a column of double .* lists are needed"),
+        ({"phi_rad": [[0.1, 0.2], None]}, "phi_rad: .* 1 nulls"),
+    ],
+)
+def test_arrow_faults(change: dict[str, Any], complaint: str) -> None:
+    arrow = pytest.importorskip("pyarrow")
+    lists = [[0.1, 0.2], [0.3]]
+    columns = {"class": [[1, 1], [1]], "momentum_gev": lists, "theta_rad": lists, "phi_rad": lists}
+    given = {k: v for k, v in {**columns, **change}.items() if v is not None}
+    with pytest.raises(kinegate.ArgumentError, match=complaint):
+        Events.from_arrow(arrow.table(given))
+
+
 def test_csv_faults(tmp_path: Path) -> None:
     path = tmp_path / "events.csv"
     path.write_text("a,b\n1,2\n")

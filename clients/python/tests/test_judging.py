@@ -140,6 +140,7 @@ def test_frames_of_verdicts(
     z = entries[entries["hypothesis"] == "Z"]
     assert (z["M"] == verdicts.observable("Z", "M").values).all()
     assert verdicts.entries_to_arrow().num_rows == len(entries)
+    assert verdicts.to_arrow().to_pandas().set_index("event_id").equals(frame)
     assert "dimuon" in repr(verdicts)
     assert "<table>" in verdicts._repr_html_()
 
