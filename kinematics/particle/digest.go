@@ -12,7 +12,7 @@ import (
 
 // StandardVersion names the embedded table. It is raised whenever the table's digest
 // changes.
-const StandardVersion = "1"
+const StandardVersion = "2"
 
 // Version returns the version of the table: the standard table's, followed by "+" and
 // twelve hexadecimal digits of the digest where files have been laid over it.

@@ -35,8 +35,8 @@ func named(tb testing.TB, tab *particle.Table, name string) particle.Particle {
 func TestStandardTable(t *testing.T) {
 	tab := table(t)
 	list := tab.List()
-	if len(list) != 221 || tab.Len() != 221 {
-		t.Fatalf("%d particles, want 128 rows and 93 antiparticles", len(list))
+	if len(list) != 235 || tab.Len() != 235 {
+		t.Fatalf("%d particles, want 135 rows and 100 antiparticles", len(list))
 	}
 	for i, p := range list {
 		for _, name := range append(p.Aliases(), p.Name) {

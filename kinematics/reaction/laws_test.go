@@ -102,7 +102,7 @@ func TestRemainder(t *testing.T) {
 		{"gamma p -> K+ K+ K0 X", "Omega-"},
 		{"gamma p -> D0bar X", "Lambda_c+"},
 		{"p p -> pi- pi- pi- X", "pi+ pi+ pi+ p p"},
-		{"gamma O16 -> p X", "t3 C12"},
+		{"gamma O16 -> p X", "N15"},
 		{"nu_mu p -> X", "nu_mu p"},
 		{"nu_mu p -> mu- X", "pi+ p"},
 		{"tau- -> pi- X", "nu_tau"},

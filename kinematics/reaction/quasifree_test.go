@@ -103,6 +103,40 @@ func TestCoherent(t *testing.T) {
 	}
 }
 
+// Each nucleus of a usual target has its spectators, and these the masses that the energies needed
+// to take off one nucleon say. Those are of the atomic mass evaluation of 2020, from memory, in
+// MeV; they are of atoms, whose electrons are bound more tightly by up to 0.5 keV.
+func TestSpectators(t *testing.T) {
+	tab := table(t)
+	for _, c := range []struct {
+		nucleus, nucleon, spectator string
+		separation                  float64
+	}{
+		{"Li7", "p", "He6", 9.974}, {"Li7", "n", "Li6", 7.251},
+		{"Be9", "p", "Li8", 16.886}, {"Be9", "n", "Be8", 1.665},
+		{"C12", "p", "B11", 15.957}, {"C12", "n", "C11", 18.721},
+		{"O16", "p", "N15", 12.127}, {"O16", "n", "O15", 15.664},
+		{"He4", "p", "t3", 19.814}, {"He4", "n", "He3", 20.578},
+	} {
+		q := bound(t, tab, "gamma "+c.nucleon+" -> "+c.nucleon+" eta", c.nucleus, 0.2)
+		nucleon, err := tab.Named(c.nucleon)
+		if err != nil {
+			t.Fatal(err)
+		}
+		spectator, err := tab.Named(c.spectator)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if q.Spectator.Number != spectator.Number {
+			t.Errorf("%s without %s is %s, not %s", c.nucleus, c.nucleon, q.Spectator.Name, c.spectator)
+		}
+		energy := 1e3 * (q.Spectator.Mass + nucleon.Mass - q.Nucleus.Mass)
+		if math.Abs(energy-c.separation) > 0.0015 {
+			t.Errorf("%s takes %.4f MeV to lose %s, not %.3f", c.nucleus, energy, c.nucleon, c.separation)
+		}
+	}
+}
+
 func TestBoundNucleonFaults(t *testing.T) {
 	tab := table(t)
 	cases := []struct {
@@ -113,7 +147,7 @@ func TestBoundNucleonFaults(t *testing.T) {
 		{"gamma d -> p n", "d", 0.1, "reaction"},
 		{"gamma p -> p eta", "d", -0.1, "fermi_momentum_gev"},
 		{"gamma p -> p eta", "d", math.NaN(), "fermi_momentum_gev"},
-		{"gamma p -> p eta", "C12", 0.2, "nucleus"},
+		{"gamma p -> p eta", "Li6", 0.2, "nucleus"}, // the remainder, He5, is not bound
 		{"gamma p -> p eta", "p", 0.2, "nucleus"},
 		{"gamma p -> p eta", "dbar", 0.2, "nucleus"},
 	}

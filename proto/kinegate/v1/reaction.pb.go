@@ -374,7 +374,8 @@ func (x *MomentumTransferPair) GetProducts() []string {
 // BoundNucleon says in what nucleus the struck nucleon is bound.
 type BoundNucleon struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
-	// Name of the nucleus, such as "d" or "C12".
+	// Name of the nucleus, such as "d" or "C12". What remains of it must be in the particle
+	// table, which has those of d, He4, Li7, Be9, C12 and O16.
 	Nucleus string `protobuf:"bytes,1,opt,name=nucleus,proto3" json:"nucleus,omitempty"`
 	// Largest momentum of the nucleon in the nucleus, within [0, 0.5].
 	FermiMomentumGev float64 `protobuf:"fixed64,2,opt,name=fermi_momentum_gev,json=fermiMomentumGev,proto3" json:"fermi_momentum_gev,omitempty"`
