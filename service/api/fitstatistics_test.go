@@ -24,9 +24,9 @@ detector:
     threshold_gev: 0.001
 `
 	fineTracks = finePhotons + `
-  tracker: {theta: {min_rad: 0.02, max_rad: 3.12}, momentum_min_gev: 0.05, constant: 0.001, per_gev: 0.0005, angle_sigma_rad: 0.0005}
+  tracker: {theta: {min_rad: 0.02, max_rad: 3.12}, min_momentum_gev: 0.05, constant: 0.001, per_gev: 0.0005, angle_sigma_rad: 0.0005}
   vertex: {sigma_x_m: 0.0005, sigma_y_m: 0.0005, sigma_z_m: 0.0005}
-  displaced: {distance_min_m: 0.005, sigma_x_m: 0.0005, sigma_y_m: 0.0005, sigma_z_m: 0.0005, efficiency: 1}
+  displaced: {min_distance_m: 0.005, sigma_x_m: 0.0005, sigma_y_m: 0.0005, sigma_z_m: 0.0005, efficiency: 1}
 `
 	flatPhotons = `
 initial_state: {beam_on_target: {beam: {even: {min_gev: 1.4, max_gev: 2}}}}
