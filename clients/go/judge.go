@@ -104,6 +104,9 @@ type JudgeStream struct {
 	closed bool  // by CloseSend
 	ended  bool
 	err    error // why it ended
+	// outlines are those of the selections that judge or have judged, by digest: as many as
+	// versions were reloaded.
+	outlines map[string]*kinegatev1.SelectionOutline
 	// broken is when the stream broke for the first time since it last went well, zero
 	// while it does; backoff is how long the next attempt waits.
 	broken  time.Time
@@ -116,8 +119,8 @@ type outgoing struct {
 	bytes int64
 }
 
-// errSelectionChanged reports a server that judges with something else after a break.
-var errSelectionChanged = errors.New("after the break the server would judge with another selection")
+// errSelectionChanged reports a server that judges with something else although the caller does not follow.
+var errSelectionChanged = errors.New("the server would judge with another selection than the stream was opened with")
 
 // Judge opens a judge stream. An opening that fails is not tried again; one that nobody
 // answers within JudgeOptions.Opening fails with an *UnreachableError. Cancelling ctx ends
@@ -139,12 +142,13 @@ func (c *Client) Judge(ctx context.Context, open *kinegatev1.JudgeOpen, options 
 	s := &JudgeStream{
 		Opened: first.opened, client: c, open: proto.CloneOf(open), ctx: ctx, cancel: cancel,
 		options: options, over: make(chan struct{}),
-		next: open.GetFirstSequence(),
+		next: open.GetFirstSequence(), outlines: map[string]*kinegatev1.SelectionOutline{},
 	}
+	_ = s.announce(first.opened.GetSelection()) // the first may be any
 	s.verdicts = make(chan *kinegatev1.VerdictBlock, s.options.Queue)
 	s.changed.L = &s.mu
 	if named := s.open.GetSelection().GetNamed(); named != nil && !s.open.GetFollow() {
-		named.SelectionDigest = first.opened.GetSelectionDigest()
+		named.SelectionDigest = first.opened.GetSelection().GetSelectionDigest()
 	}
 	go s.run(first)
 	return s, nil
@@ -305,15 +309,36 @@ func (s *JudgeStream) resume(cause error) (*link, error) {
 		var l *link
 		l, err = s.client.link(s.ctx, open, s.options.Silence, false)
 		switch {
-		case err == nil && !s.open.GetFollow() && l.opened.GetSelectionDigest() != s.Opened.GetSelectionDigest():
-			l.close()
-			return nil, errSelectionChanged
 		case err == nil:
+			if err = s.announce(l.opened.GetSelection()); err != nil {
+				l.close()
+				return nil, err
+			}
 			return l, nil
 		case s.ctx.Err() != nil || !passing(err):
 			return nil, err
 		}
 	}
+}
+
+// announce takes the outline of the selection that judges from now on, which without follow is the
+// one that the stream was opened with.
+func (s *JudgeStream) announce(outline *kinegatev1.SelectionOutline) error {
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	if !s.open.GetFollow() && outline.GetSelectionDigest() != s.Opened.GetSelection().GetSelectionDigest() {
+		return errSelectionChanged
+	}
+	s.outlines[outline.GetSelectionDigest()] = outline
+	return nil
+}
+
+// Outline is the outline of the selection that judged a verdict block of the stream: what its
+// columns mean. Where the opening says follow, it may differ from that of Opened.
+func (s *JudgeStream) Outline(v *kinegatev1.VerdictBlock) *kinegatev1.SelectionOutline {
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	return s.outlines[v.GetSelectionDigest()]
 }
 
 // settle takes a verdict, which answers the oldest block, and hands it to Recv.
@@ -322,6 +347,9 @@ func (s *JudgeStream) settle(v *kinegatev1.VerdictBlock) (bytes int64, err error
 	defer s.mu.Unlock()
 	if s.sent == 0 || v.GetSequence() != s.queue[0].block.GetSequence() {
 		return 0, fmt.Errorf("%w: verdict %d was not due", errProtocol, v.GetSequence())
+	}
+	if _, known := s.outlines[v.GetSelectionDigest()]; !known {
+		return 0, fmt.Errorf("%w: verdict %d is of a selection that was not announced", errProtocol, v.GetSequence())
 	}
 	bytes = s.queue[0].bytes
 	s.queue[0] = outgoing{}

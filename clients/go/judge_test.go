@@ -33,10 +33,13 @@ func (g gate) Judge(stream grpc.BidiStreamingServer[kinegatev1.JudgeRequest, kin
 		switch x := request.GetFrame().(type) {
 		case *kinegatev1.JudgeRequest_Open:
 			response.Frame = &kinegatev1.JudgeResponse_Opened{Opened: &kinegatev1.JudgeOpened{
-				SelectionDigest: "d1", Credit: &kinegatev1.Credit{BlockCount: 4, ByteCount: 1 << 20},
+				Selection: &kinegatev1.SelectionOutline{SelectionDigest: "d1"},
+				Credit:    &kinegatev1.Credit{BlockCount: 4, ByteCount: 1 << 20},
 			}}
 		case *kinegatev1.JudgeRequest_Block:
-			response.Frame = &kinegatev1.JudgeResponse_Verdict{Verdict: g.verdict(x.Block.GetSequence())}
+			verdict := g.verdict(x.Block.GetSequence())
+			verdict.SelectionDigest = "d1"
+			response.Frame = &kinegatev1.JudgeResponse_Verdict{Verdict: verdict}
 		default:
 			continue
 		}

@@ -177,6 +177,10 @@ func (s *JudgeStream) receive(l *link) error {
 			l.bytes -= bytes
 			s.changed.Broadcast()
 			s.mu.Unlock()
+		case *kinegatev1.JudgeResponse_Taken:
+			if err := s.announce(x.Taken); err != nil {
+				return err
+			}
 		case *kinegatev1.JudgeResponse_Draining:
 			l.draining.Store(true)
 		}

@@ -379,7 +379,7 @@ func (b *brute) candidates() map[int]float64 {
 			continue
 		}
 		for _, w := range append([]selection.TimeWindow{*t.Prompt}, t.SideBands...) {
-			if x := b.block.Beam.TimeNS[row]; x >= w.MinNS && x < w.MaxNS {
+			if x := b.block.Beam.TimeNS[row]; (w.MinNS == nil || x >= *w.MinNS) && (w.MaxNS == nil || x < *w.MaxNS) {
 				out[row-first] = 1
 				if w.Weight != nil {
 					out[row-first] = *w.Weight

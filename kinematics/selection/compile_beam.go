@@ -55,25 +55,34 @@ func (d *drafter) timeWindows(at string, t *TaggedBeam) {
 		if i > 0 {
 			field = indexed(at+".side_bands", i-1)
 		}
-		w := &windows[i]
-		d.finite(field+".min_ns", w.MinNS)
-		d.finite(field+".max_ns", w.MaxNS)
-		if !(w.MinNS < w.MaxNS) {
-			d.fault(field+".max_ns", fault.Text(w.MaxNS), "> min_ns = "+fault.Text(w.MinNS))
-		}
-		weight := 1.0
-		if w.Weight != nil {
-			weight = *w.Weight
-			d.finite(field+".weight", weight)
-		}
-		for k := range i {
-			if windows[k].MinNS < w.MaxNS && w.MinNS < windows[k].MaxNS {
-				d.fault(field, fault.Text(w.MinNS)+" to "+fault.Text(w.MaxNS), "a window that overlaps no other")
+		w := d.timeWindow(field, &windows[i])
+		for _, other := range d.out.beam.windows {
+			if other.low < w.high && w.low < other.high {
+				d.fault(field, fault.Text(w.low)+" to "+fault.Text(w.high), "a window that overlaps no other")
 				break
 			}
 		}
-		d.out.beam.windows = append(d.out.beam.windows, timeWindow{low: w.MinNS, high: w.MaxNS, weight: weight})
+		d.out.beam.windows = append(d.out.beam.windows, w)
 	}
+}
+
+// timeWindow compiles one window.
+func (d *drafter) timeWindow(field string, w *TimeWindow) timeWindow {
+	out := timeWindow{low: math.Inf(-1), high: math.Inf(1), weight: 1}
+	for _, x := range []struct {
+		name string
+		from *float64
+		to   *float64
+	}{{".min_ns", w.MinNS, &out.low}, {".max_ns", w.MaxNS, &out.high}, {".weight", w.Weight, &out.weight}} {
+		if x.from != nil {
+			*x.to = *x.from
+			d.finite(field+x.name, *x.from)
+		}
+	}
+	if !(out.low < out.high) {
+		d.fault(field+".max_ns", fault.Text(out.high), "> min_ns = "+fault.Text(out.low))
+	}
+	return out
 }
 
 // finite checks that a number is neither NaN nor infinite.

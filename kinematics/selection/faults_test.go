@@ -14,7 +14,7 @@ import (
 func valid() selection.Hypothesis {
 	return selection.Hypothesis{
 		Reaction: "gamma p -> p pi0 pi0, pi0 -> gamma gamma",
-		Beam:     &selection.BeamSource{Tagged: &selection.TaggedBeam{Prompt: &selection.TimeWindow{MinNS: -1, MaxNS: 1}}},
+		Beam:     &selection.BeamSource{Tagged: &selection.TaggedBeam{Prompt: &selection.TimeWindow{MinNS: new(-1.0), MaxNS: new(1.0)}}},
 		Measurements: []selection.ProductMeasurement{
 			{Product: "p", Measurement: selection.Direction},
 		},
@@ -86,19 +86,19 @@ func TestFaults(t *testing.T) {
 			first(s).Reaction = "gamma gamma -> p pbar pi0 pi0, pi0 -> gamma gamma"
 		}},
 		{"window upside down", root + ".beam.tagged.prompt.max_ns", "> min_ns", func(s *selection.Selection) {
-			first(s).Beam.Tagged.Prompt.MaxNS = -3
+			first(s).Beam.Tagged.Prompt.MaxNS = new(-3.0)
 		}},
 		{"window not finite", root + ".beam.tagged.prompt.min_ns", "finite", func(s *selection.Selection) {
-			first(s).Beam.Tagged.Prompt.MinNS = math.Inf(-1)
+			first(s).Beam.Tagged.Prompt.MinNS = new(math.Inf(-1))
 		}},
 		{"overlap", root + ".beam.tagged.side_bands[1]", "overlaps", func(s *selection.Selection) {
-			first(s).Beam.Tagged.SideBands = []selection.TimeWindow{{MinNS: 1, MaxNS: 2}, {MinNS: 0.9, MaxNS: 1.5}}
+			first(s).Beam.Tagged.SideBands = []selection.TimeWindow{{MinNS: new(1.0), MaxNS: new(2.0)}, {MinNS: new(0.9), MaxNS: new(1.5)}}
 		}},
 		{"weight", root + ".beam.tagged.side_bands[0].weight", "NaN", func(s *selection.Selection) {
-			first(s).Beam.Tagged.SideBands = []selection.TimeWindow{{MinNS: 1, MaxNS: 2, Weight: number(math.NaN())}}
+			first(s).Beam.Tagged.SideBands = []selection.TimeWindow{{MinNS: new(1.0), MaxNS: new(2.0), Weight: number(math.NaN())}}
 		}},
 		{"side band alone", root + ".beam.tagged.side_bands", "prompt", func(s *selection.Selection) {
-			first(s).Beam.Tagged = &selection.TaggedBeam{SideBands: []selection.TimeWindow{{MinNS: 1, MaxNS: 2}}}
+			first(s).Beam.Tagged = &selection.TaggedBeam{SideBands: []selection.TimeWindow{{MinNS: new(1.0), MaxNS: new(2.0)}}}
 		}},
 		{"no initial state", root + ".beam.fixed", "exactly one", fixed(selection.InitialState{})},
 		{"no motion", root + ".beam.fixed.beam_on_target.beam", "exactly one", fixed(selection.InitialState{BeamOnTarget: &selection.BeamMotion{}})},

@@ -117,7 +117,7 @@ func TestUnreadableReactionHidesNothing(t *testing.T) {
 	h := selection.Hypothesis{
 		Reaction: "gamma p -> p pi0 pi0,, pi0",
 		Beam: &selection.BeamSource{Tagged: &selection.TaggedBeam{
-			Prompt: &selection.TimeWindow{MinNS: 5, MaxNS: -5},
+			Prompt: &selection.TimeWindow{MinNS: new(5.0), MaxNS: new(-5.0)},
 		}},
 		Measurements: []selection.ProductMeasurement{{Product: "p", Measurement: 9}},
 		ExtraObjects: &selection.ExtraObjects{Rule: selection.SoftPhotons},

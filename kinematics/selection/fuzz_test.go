@@ -117,7 +117,7 @@ func (d *dice) hypothesis() selection.Hypothesis {
 	if d.below(2) == 0 {
 		h.Beam = &selection.BeamSource{Tagged: &selection.TaggedBeam{}}
 		if d.below(2) == 0 {
-			h.Beam.Tagged.Prompt = &selection.TimeWindow{MinNS: d.number(), MaxNS: d.number(), Weight: d.limit()}
+			h.Beam.Tagged.Prompt = &selection.TimeWindow{MinNS: d.limit(), MaxNS: d.limit(), Weight: d.limit()}
 		}
 	} else if d.below(2) == 0 {
 		x, y := d.number(), d.number()

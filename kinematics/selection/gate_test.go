@@ -127,8 +127,8 @@ func TestTaggedCandidates(t *testing.T) {
 			{Product: "p", Measurement: selection.Missing},
 		},
 		Beam: &selection.BeamSource{Tagged: &selection.TaggedBeam{
-			Prompt:    &selection.TimeWindow{MinNS: -1, MaxNS: 1},
-			SideBands: []selection.TimeWindow{{MinNS: -9, MaxNS: -5, Weight: &minus}, {MinNS: 5, MaxNS: 9, Weight: &minus}},
+			Prompt:    &selection.TimeWindow{MinNS: new(-1.0), MaxNS: new(1.0)},
+			SideBands: []selection.TimeWindow{{MinNS: new(-9.0), MaxNS: new(-5.0), Weight: &minus}, {MinNS: new(5.0), MaxNS: new(9.0), Weight: &minus}},
 		}},
 		Condition: allOf(within(selection.MissingMassSquared, 0, 9, "gamma")),
 		Record:    []selection.Window{{Observable: selection.TimeDifference}, {Observable: selection.MomentumTransfer, Initial: selection.Beam, Products: []string{"gamma"}}},

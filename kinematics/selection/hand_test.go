@@ -164,6 +164,30 @@ func TestNotComputed(t *testing.T) {
 	}
 }
 
+// TestOpenTimeWindows holds that a limit which is absent does not cut.
+func TestOpenTimeWindows(t *testing.T) {
+	minus := -0.5
+	p := compile(t, selection.Hypothesis{
+		Reaction: "gamma p -> p pi0, pi0 -> gamma gamma", ExtraObjects: &selection.ExtraObjects{Rule: selection.AnyExtraObjects},
+		Measurements: []selection.ProductMeasurement{{Product: "p", Measurement: selection.Missing}},
+		Beam: &selection.BeamSource{Tagged: &selection.TaggedBeam{
+			Prompt:    &selection.TimeWindow{MaxNS: new(2.0)},
+			SideBands: []selection.TimeWindow{{MinNS: new(2.0), Weight: &minus}},
+		}},
+	})
+	block := makeBlock([][]object{{photon(0, 1, 0), photon(1, 0, 0)}}, nil)
+	block.Beam = &event.Beam{
+		Offsets: []int32{0, 3}, EnergyGeV: []float64{3, 3, 3}, SigmaGeV: []float64{0, 0, 0}, TimeNS: []float64{-1e9, 2, 1e9},
+	}
+	var weights []float64
+	for _, e := range rows(judge(t, p, block, selection.AllEntries)) {
+		weights = append(weights, e.Weight)
+	}
+	if !slices.Equal(weights, []float64{1, minus, minus}) {
+		t.Errorf("weights %v", weights)
+	}
+}
+
 // TestNegativeSquare checks that a mass of a negative square lies outside even where
 // nothing limits it, and that its signed square is reported.
 func TestNegativeSquare(t *testing.T) {

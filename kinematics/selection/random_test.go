@@ -102,7 +102,7 @@ func everything(r *rand.Rand) selection.Selection {
 	e1, e2 := 2.0, 1.5
 	soft := &selection.ExtraObjects{Rule: selection.SoftPhotons, MaxCount: 2, MaxEnergyGeV: 0.7}
 	tagged := &selection.BeamSource{Tagged: &selection.TaggedBeam{
-		Prompt: &selection.TimeWindow{MinNS: -4, MaxNS: 4}, SideBands: []selection.TimeWindow{{MinNS: 4, MaxNS: 8, Weight: &minus}},
+		Prompt: &selection.TimeWindow{MinNS: new(-4.0), MaxNS: new(4.0)}, SideBands: []selection.TimeWindow{{MinNS: new(4.0), MaxNS: new(8.0), Weight: &minus}},
 	}}
 	fixed := &selection.BeamSource{Fixed: &selection.InitialState{TwoBeams: &selection.TwoBeams{
 		Beam1: selection.BeamMotion{TotalEnergyGeV: &e1}, Beam2: selection.BeamMotion{TotalEnergyGeV: &e2},

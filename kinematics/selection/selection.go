@@ -158,9 +158,10 @@ type TaggedBeam struct {
 	SideBands []TimeWindow
 }
 
-// TimeWindow is a half-open window [MinNS, MaxNS) on the time of a beam candidate.
+// TimeWindow is a half-open window [MinNS, MaxNS) on the time of a beam candidate; an
+// absent limit does not cut.
 type TimeWindow struct {
-	MinNS, MaxNS float64
+	MinNS, MaxNS *float64
 	// Weight of an entry with a candidate in this window; absent means 1.
 	Weight *float64
 }

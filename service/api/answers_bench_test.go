@@ -58,7 +58,7 @@ func BenchmarkAnswers(b *testing.B) {
 		}},
 		{"DescribeDecay", func(energy float64) (proto.Message, error) {
 			return d.DescribeDecay(b.Context(), &kinegatev1.DescribeDecayRequest{
-				Decay: "Sigma0 -> Lambda gamma, Lambda -> p pi-", Parent: total(1.2 * energy),
+				Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "Sigma0 -> Lambda gamma, Lambda -> p pi-"}, Parent: total(1.2 * energy),
 			})
 		}},
 		{"TraceDalitzBoundary", func(energy float64) (proto.Message, error) {

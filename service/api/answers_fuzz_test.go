@@ -151,7 +151,7 @@ func FuzzDecays(f *testing.F) {
 	s := &decayService{table: fuzzTable(f)}
 	f.Fuzz(func(t *testing.T, text string, energy, distance, cosine, angle float64) {
 		request := &kinegatev1.DescribeDecayRequest{
-			Decay: text, Parent: total(energy), DistancesM: []float64{distance},
+			Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: text}, Parent: total(energy), DistancesM: []float64{distance},
 			Intervals: []*kinegatev1.DistanceInterval{{FromM: distance, ToM: &energy}, {FromM: distance}},
 		}
 		ask(t, s.DescribeDecay, request)

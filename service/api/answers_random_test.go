@@ -97,7 +97,7 @@ func askDecay(t *testing.T, d draw, s *decayService, text string) bool {
 	t.Helper()
 	to := d.near()
 	request := &kinegatev1.DescribeDecayRequest{
-		Decay: text, Parent: total(4 * math.Pow(10, 3*d.Float64())), DistancesM: []float64{d.near()},
+		Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: text}, Parent: total(4 * math.Pow(10, 3*d.Float64())), DistancesM: []float64{d.near()},
 		Intervals: []*kinegatev1.DistanceInterval{{FromM: d.near(), ToM: &to}},
 	}
 	if d.IntN(2) == 0 {

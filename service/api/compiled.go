@@ -23,7 +23,7 @@ type compiledSelection struct {
 	message *kinegatev1.Selection
 	program *selection.Program
 	digest  string
-	outline []*kinegatev1.HypothesisOutline
+	outline *kinegatev1.SelectionOutline
 }
 
 // compile checks a selection as a whole. The error is a fault.List, or an unknown
@@ -44,7 +44,12 @@ func compile(m *kinegatev1.Selection, table *particle.Table) (*compiledSelection
 	if err != nil {
 		return nil, err
 	}
-	c := &compiledSelection{message: m, program: program, digest: digest}
+	c := &compiledSelection{
+		message: m, program: program, digest: digest, outline: &kinegatev1.SelectionOutline{SelectionDigest: digest},
+	}
+	for _, g := range m.GetGroups() {
+		c.outline.Groups = append(c.outline.Groups, g.GetName())
+	}
 	for _, o := range program.Outlines() {
 		outline := &kinegatev1.HypothesisOutline{
 			Name: o.Name, Reaction: o.Reaction, Products: o.Products, Observables: o.Observables,
@@ -52,7 +57,7 @@ func compile(m *kinegatev1.Selection, table *particle.Table) (*compiledSelection
 		if o.DegreesOfFreedom != selection.NoFit {
 			outline.DegreesOfFreedom = new(int32(o.DegreesOfFreedom)) //nolint:gosec // below a hundred
 		}
-		c.outline = append(c.outline, outline)
+		c.outline.Hypotheses = append(c.outline.Hypotheses, outline)
 	}
 	return c, nil
 }
@@ -65,10 +70,13 @@ func (c *compiledSelection) accepts(block *event.Block) error {
 	return nil
 }
 
-// largestReply is the bound of an encoded verdict block on a block within the
-// limits.
+// largestReply is the bound of an encoded reply on a block within the limits: the verdict
+// block with the outline beside it, as a unary call returns them and as a stream sends them
+// where a newer selection takes over.
 func (c *compiledSelection) largestReply(limits blockLimits, detail selection.Detail) int64 {
-	return c.program.LargestReplyBytes(limits.form(), detail)
+	// Two members of a message, each with its tag and length.
+	const framing = 16
+	return c.program.LargestReplyBytes(limits.form(), detail) + int64(proto.Size(c.outline)) + framing
 }
 
 // readSelection reads the text of a selection file and compiles it. The faults are

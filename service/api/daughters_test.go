@@ -13,7 +13,7 @@ import (
 // cosine in the rest frame is uniform.
 func TestPhotonPair(t *testing.T) {
 	const energy = 2.0
-	request := &kinegatev1.DescribeDecayRequest{Decay: "pi0 -> gamma gamma", Parent: total(energy)}
+	request := &kinegatev1.DescribeDecayRequest{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "pi0 -> gamma gamma"}, Parent: total(energy)}
 	m, err := describeDecay(t, request)
 	if err != nil {
 		t.Fatal(err)
@@ -46,7 +46,7 @@ func TestPhotonPair(t *testing.T) {
 // frame, and a forbidden angle.
 func TestDecayPairs(t *testing.T) {
 	m, err := describeDecay(t, &kinegatev1.DescribeDecayRequest{
-		Decay: "Lambda -> p pi-", Parent: total(3), RestFrameCosines: []float64{-1, 0.3, 1}, LaboratoryAnglesRad: []float64{0.02, 1},
+		Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "Lambda -> p pi-"}, Parent: total(3), RestFrameCosines: []float64{-1, 0.3, 1}, LaboratoryAnglesRad: []float64{0.02, 1},
 	})
 	if err != nil {
 		t.Fatal(err)
@@ -68,7 +68,7 @@ func TestDecayPairs(t *testing.T) {
 // TestGranddaughters holds the photons of Sigma0 -> Lambda gamma, Lambda -> n pi0 and the
 // box spectrum of the pi0 against the limits of both steps together.
 func TestGranddaughters(t *testing.T) {
-	m, err := describeDecay(t, &kinegatev1.DescribeDecayRequest{Decay: "Sigma0 -> Lambda gamma, Lambda -> p pi-", Parent: total(2)})
+	m, err := describeDecay(t, &kinegatev1.DescribeDecayRequest{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "Sigma0 -> Lambda gamma, Lambda -> p pi-"}, Parent: total(2)})
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -87,11 +87,11 @@ func TestGranddaughters(t *testing.T) {
 	if !near(p.GetMaxGev()+pi.GetMinGev(), lambda, 1e-14) || !near(p.GetMinGev()+pi.GetMaxGev(), lambda, 1e-14) {
 		t.Errorf("%v and %v do not share %g", p, pi, lambda)
 	}
-	three, err := describeDecay(t, &kinegatev1.DescribeDecayRequest{Decay: "eta -> pi0 pi0 pi0, pi0 -> gamma gamma"})
+	three, err := describeDecay(t, &kinegatev1.DescribeDecayRequest{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "eta -> pi0 pi0 pi0, pi0 -> gamma gamma"}})
 	if err != nil || len(three.GetGranddaughters()) != 6 || three.GetGranddaughters()[0].RestFrameEnergyDensityPerGev != nil {
 		t.Errorf("%v, %v", three.GetGranddaughters(), err)
 	}
-	wide, err := describeDecay(t, &kinegatev1.DescribeDecayRequest{Decay: "omega -> rho0 pi0, rho0 -> pi+ pi-"})
+	wide, err := describeDecay(t, &kinegatev1.DescribeDecayRequest{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "omega -> rho0 pi0, rho0 -> pi+ pi-"}})
 	if err != nil || wide.GetState() != kinegatev1.ChannelState_CHANNEL_STATE_OPEN_THROUGH_WIDTH ||
 		wide.GetLimitMasses() != kinegatev1.LimitMasses_LIMIT_MASSES_LIGHTEST || len(wide.GetDaughters()) != 2 {
 		t.Errorf("%v, %v", wide, err)
@@ -101,14 +101,14 @@ func TestGranddaughters(t *testing.T) {
 func TestDecayAtRestAndStretches(t *testing.T) {
 	end := 0.1
 	m, err := describeDecay(t, &kinegatev1.DescribeDecayRequest{
-		Decay: "K0_S -> pi+ pi-", Intervals: []*kinegatev1.DistanceInterval{{FromM: 0, ToM: &end}, {FromM: 1}},
+		Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "K0_S -> pi+ pi-"}, Intervals: []*kinegatev1.DistanceInterval{{FromM: 0, ToM: &end}, {FromM: 1}},
 	})
 	if err != nil || !slices.Equal(m.GetDecayingFractions(), []float64{1, 0}) || m.GetDaughters()[0].LaboratoryEnergyDensityPerGev != nil ||
 		m.GetOpeningAngle().GetMinRad() != math.Pi {
 		t.Errorf("at rest: %v, %v", m, err)
 	}
 	m, err = describeDecay(t, &kinegatev1.DescribeDecayRequest{
-		Decay: "K0_S -> pi+ pi-", Parent: total(2), DistancesM: []float64{0.05, 0.1},
+		Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "K0_S -> pi+ pi-"}, Parent: total(2), DistancesM: []float64{0.05, 0.1},
 		Intervals: []*kinegatev1.DistanceInterval{{FromM: 0.05, ToM: &end}, {FromM: 0}},
 	})
 	if err != nil {
@@ -118,11 +118,11 @@ func TestDecayAtRestAndStretches(t *testing.T) {
 	if !near(f[0], s[0]-s[1], 1e-12) || f[1] != 1 {
 		t.Errorf("surviving %v, decaying %v", s, f)
 	}
-	structured, err := describeDecay(t, &kinegatev1.DescribeDecayRequest{StructuredDecay: &kinegatev1.Reaction{
+	structured, err := describeDecay(t, &kinegatev1.DescribeDecayRequest{Form: &kinegatev1.DescribeDecayRequest_StructuredDecay{StructuredDecay: &kinegatev1.Reaction{
 		Initial: []string{"eta"}, Products: []*kinegatev1.Product{
 			{Particle: "pi0", Daughters: []*kinegatev1.Product{{Particle: "gamma"}, {Particle: "gamma"}}}, {Particle: "pi0"}, {Particle: "pi0"},
 		},
-	}})
+	}}})
 	if err != nil || len(structured.GetGranddaughters()) != 2 {
 		t.Errorf("structured: %v, %v", structured, err)
 	}
@@ -136,17 +136,17 @@ func TestDescribeDecayRefusesLists(t *testing.T) {
 		request *request
 		field   string
 	}{
-		{"both forms", &request{Decay: "Lambda -> p pi-", StructuredDecay: &kinegatev1.Reaction{}}, "structured_decay"},
-		{"structured typo", &request{StructuredDecay: &kinegatev1.Reaction{Initial: []string{"Lamda"}}}, "structured_decay.initial[0]"},
-		{"opening angle of no photons", &request{Decay: "Lambda -> p pi-", OpeningAnglesRad: []float64{1}}, "opening_angles_rad"},
-		{"opening angle", &request{Decay: "pi0 -> gamma gamma", OpeningAnglesRad: []float64{1, 4}}, "opening_angles_rad[1]"},
-		{"opening angles", &request{Decay: "pi0 -> gamma gamma", OpeningAnglesRad: make([]float64, 1001)}, "opening_angles_rad"},
-		{"cosine of three", &request{Decay: "eta -> pi0 pi0 pi0", RestFrameCosines: []float64{1}}, "rest_frame_cosines"},
-		{"cosine", &request{Decay: "Lambda -> p pi-", RestFrameCosines: []float64{math.NaN()}}, "rest_frame_cosines[0]"},
-		{"angle of three", &request{Decay: "eta -> pi0 pi0 pi0", LaboratoryAnglesRad: []float64{1}}, "laboratory_angles_rad"},
-		{"angle", &request{Decay: "Lambda -> p pi-", LaboratoryAnglesRad: []float64{-1}}, "laboratory_angles_rad[0]"},
-		{"stretch before the start", &request{Decay: "Lambda -> p pi-", Intervals: []*kinegatev1.DistanceInterval{{FromM: -1}}}, "intervals[0].from_m"},
-		{"stretch backward", &request{Decay: "Lambda -> p pi-", Intervals: []*kinegatev1.DistanceInterval{{}, {FromM: 1, ToM: &end}}}, "intervals[1].to_m"},
+		{"no form", &request{}, "decay"},
+		{"structured typo", &request{Form: &kinegatev1.DescribeDecayRequest_StructuredDecay{StructuredDecay: &kinegatev1.Reaction{Initial: []string{"Lamda"}}}}, "structured_decay.initial[0]"},
+		{"opening angle of no photons", &request{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "Lambda -> p pi-"}, OpeningAnglesRad: []float64{1}}, "opening_angles_rad"},
+		{"opening angle", &request{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "pi0 -> gamma gamma"}, OpeningAnglesRad: []float64{1, 4}}, "opening_angles_rad[1]"},
+		{"opening angles", &request{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "pi0 -> gamma gamma"}, OpeningAnglesRad: make([]float64, 1001)}, "opening_angles_rad"},
+		{"cosine of three", &request{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "eta -> pi0 pi0 pi0"}, RestFrameCosines: []float64{1}}, "rest_frame_cosines"},
+		{"cosine", &request{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "Lambda -> p pi-"}, RestFrameCosines: []float64{math.NaN()}}, "rest_frame_cosines[0]"},
+		{"angle of three", &request{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "eta -> pi0 pi0 pi0"}, LaboratoryAnglesRad: []float64{1}}, "laboratory_angles_rad"},
+		{"angle", &request{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "Lambda -> p pi-"}, LaboratoryAnglesRad: []float64{-1}}, "laboratory_angles_rad[0]"},
+		{"stretch before the start", &request{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "Lambda -> p pi-"}, Intervals: []*kinegatev1.DistanceInterval{{FromM: -1}}}, "intervals[0].from_m"},
+		{"stretch backward", &request{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "Lambda -> p pi-"}, Intervals: []*kinegatev1.DistanceInterval{{}, {FromM: 1, ToM: &end}}}, "intervals[1].to_m"},
 	}
 	for _, c := range cases {
 		t.Run(c.name, func(t *testing.T) {

@@ -36,9 +36,6 @@ func (s *decayService) DescribeDecay(
 	_ context.Context, request *kinegatev1.DescribeDecayRequest,
 ) (*kinegatev1.DescribeDecayResponse, error) {
 	process := processForm{name: "decay", text: request.GetDecay(), structured: request.GetStructuredDecay()}
-	if process.text != "" && process.structured != nil {
-		return nil, fault.New(fault.Invalid, "structured_decay", "given", "none beside decay")
-	}
 	r, err := process.read(s.table)
 	if err != nil {
 		return nil, err

@@ -31,7 +31,7 @@ func TestDescribeDecay(t *testing.T) {
 	}
 	for _, c := range cases {
 		t.Run(c.name, func(t *testing.T) {
-			m, err := describeDecay(t, &kinegatev1.DescribeDecayRequest{Decay: c.text, Parent: total(2)})
+			m, err := describeDecay(t, &kinegatev1.DescribeDecayRequest{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: c.text}, Parent: total(2)})
 			if err != nil {
 				t.Fatal(err)
 			}
@@ -53,7 +53,7 @@ func TestDescribeDecay(t *testing.T) {
 // p* = 206 MeV and c tau = 2.6844 cm (Review of Particle Physics, from memory).
 func TestKaonInFlight(t *testing.T) {
 	const decay = "K0_S -> pi+ pi-"
-	m, err := describeDecay(t, &kinegatev1.DescribeDecayRequest{Decay: decay, DistancesM: []float64{0, 0.1}})
+	m, err := describeDecay(t, &kinegatev1.DescribeDecayRequest{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: decay}, DistancesM: []float64{0, 0.1}})
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -65,7 +65,7 @@ func TestKaonInFlight(t *testing.T) {
 	}
 	// As fast as it is heavy, it flies c tau in the mean.
 	m, err = describeDecay(t, &kinegatev1.DescribeDecayRequest{
-		Decay: decay, DistancesM: []float64{0.026844},
+		Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: decay}, DistancesM: []float64{0.026844},
 		Parent: &kinegatev1.BeamMotion{Value: &kinegatev1.BeamMotion_MomentumGev{MomentumGev: 0.497611}},
 	})
 	if err != nil {
@@ -81,7 +81,7 @@ func TestKaonInFlight(t *testing.T) {
 
 // TestDescribeDecayClosed: between sharp states a decay that lacks energy is an answer.
 func TestDescribeDecayClosed(t *testing.T) {
-	m, err := describeDecay(t, &kinegatev1.DescribeDecayRequest{Decay: "pi0 -> mu+ mu-"})
+	m, err := describeDecay(t, &kinegatev1.DescribeDecayRequest{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "pi0 -> mu+ mu-"}})
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -102,16 +102,16 @@ func TestDescribeDecayRefuses(t *testing.T) {
 		holds   string
 	}{
 		{"empty", &kinegatev1.DescribeDecayRequest{}, FieldInvalid, "decay", ""},
-		{"reaction", &kinegatev1.DescribeDecayRequest{Decay: "gamma p -> p pi0"}, FieldInvalid, "decay", "one particle"},
-		{"typo", &kinegatev1.DescribeDecayRequest{Decay: "Lamda -> p pi-"}, FieldInvalid, "decay", "Lambda"},
-		{"too heavy inside", &kinegatev1.DescribeDecayRequest{Decay: "eta -> gamma pi0, pi0 -> mu+ mu-"}, LawBroken, "decay", "energy"},
-		{"broken law", &kinegatev1.DescribeDecayRequest{Decay: "Lambda -> p pi0"}, LawBroken, "decay", "charge"},
-		{"motion not set", &kinegatev1.DescribeDecayRequest{Decay: "Lambda -> p pi-", Parent: &kinegatev1.BeamMotion{}}, FieldInvalid, "parent", ""},
-		{"energy below mass", &kinegatev1.DescribeDecayRequest{Decay: "Lambda -> p pi-", Parent: total(1)}, FieldInvalid, "parent.total_energy_gev", ">="},
-		{"NaN", &kinegatev1.DescribeDecayRequest{Decay: "Lambda -> p pi-", Parent: total(math.NaN())}, FieldInvalid, "parent.total_energy_gev", ""},
-		{"distance", &kinegatev1.DescribeDecayRequest{Decay: "Lambda -> p pi-", DistancesM: []float64{1, -1}}, FieldInvalid, "distances_m[1]", ">= 0"},
-		{"distance NaN", &kinegatev1.DescribeDecayRequest{Decay: "rho0 -> pi+ pi-", DistancesM: []float64{math.NaN()}}, FieldInvalid, "distances_m[0]", ""},
-		{"distances", &kinegatev1.DescribeDecayRequest{Decay: "Lambda -> p pi-", DistancesM: make([]float64, 1001)}, FieldInvalid, "distances_m", "1000"},
+		{"reaction", &kinegatev1.DescribeDecayRequest{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "gamma p -> p pi0"}}, FieldInvalid, "decay", "one particle"},
+		{"typo", &kinegatev1.DescribeDecayRequest{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "Lamda -> p pi-"}}, FieldInvalid, "decay", "Lambda"},
+		{"too heavy inside", &kinegatev1.DescribeDecayRequest{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "eta -> gamma pi0, pi0 -> mu+ mu-"}}, LawBroken, "decay", "energy"},
+		{"broken law", &kinegatev1.DescribeDecayRequest{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "Lambda -> p pi0"}}, LawBroken, "decay", "charge"},
+		{"motion not set", &kinegatev1.DescribeDecayRequest{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "Lambda -> p pi-"}, Parent: &kinegatev1.BeamMotion{}}, FieldInvalid, "parent", ""},
+		{"energy below mass", &kinegatev1.DescribeDecayRequest{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "Lambda -> p pi-"}, Parent: total(1)}, FieldInvalid, "parent.total_energy_gev", ">="},
+		{"NaN", &kinegatev1.DescribeDecayRequest{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "Lambda -> p pi-"}, Parent: total(math.NaN())}, FieldInvalid, "parent.total_energy_gev", ""},
+		{"distance", &kinegatev1.DescribeDecayRequest{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "Lambda -> p pi-"}, DistancesM: []float64{1, -1}}, FieldInvalid, "distances_m[1]", ">= 0"},
+		{"distance NaN", &kinegatev1.DescribeDecayRequest{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "rho0 -> pi+ pi-"}, DistancesM: []float64{math.NaN()}}, FieldInvalid, "distances_m[0]", ""},
+		{"distances", &kinegatev1.DescribeDecayRequest{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "Lambda -> p pi-"}, DistancesM: make([]float64, 1001)}, FieldInvalid, "distances_m", "1000"},
 	}
 	for _, c := range cases {
 		t.Run(c.name, func(t *testing.T) {

@@ -36,7 +36,7 @@ func (s *selectionService) ExplainVerdict(ctx context.Context, request *kinegate
 	if at < 0 || at >= block.Events() {
 		return nil, fault.New(fault.Invalid, "event_index", strconv.Itoa(at), "0 to "+strconv.Itoa(block.Events()-1))
 	}
-	j, err := s.newJudging(request.GetSelection(), kinegatev1.EntryDetail_ENTRY_DETAIL_NONE, sizeOf(bytes, block), false)
+	j, err := s.newJudging(request.GetSelection(), kinegatev1.EntryDetail_ENTRY_DETAIL_NONE, s.deps.Limits.blocks().of(bytes, block), false)
 	if err != nil {
 		return nil, err
 	}
@@ -75,7 +75,7 @@ func explanationMessage(e *selection.Explanation, c *compiledSelection) *kinegat
 		SelectionDigest: c.digest, Status: kinegatev1.EventStatus(e.Status), Gate: e.Gate,
 	}
 	for i := range e.Hypotheses {
-		h, outline := &e.Hypotheses[i], c.outline[i]
+		h, outline := &e.Hypotheses[i], c.outline.GetHypotheses()[i]
 		x := &kinegatev1.HypothesisExplanation{
 			Name: outline.GetName(), Reaction: outline.GetReaction(), Products: outline.GetProducts(),
 			Accepted: h.Accepted, Kept: h.Kept, Obstacle: h.Obstacle, AssignmentCount: h.Tried,

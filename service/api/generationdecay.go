@@ -79,7 +79,7 @@ func (g *generationForm) override(path string, number int, p place, m *kinegatev
 			LowGeV: shape.GetMinGev(), HighGeV: shape.GetMaxGev(),
 		}
 		if low, high := shape.GetMinGev(), shape.GetMaxGev(); high > 0 && high <= low {
-			g.faults = append(g.faults, fault.Number(here+".max_gev", high, "> low_gev"))
+			g.faults = append(g.faults, fault.Number(here+".max_gev", high, "> min_gev"))
 		}
 	}
 	var name string

@@ -22,7 +22,7 @@ func (s *infoService) GetInfo(context.Context, *kinegatev1.GetInfoRequest) (*kin
 		TableVersion:    s.deps.Table.Version(),
 		TableDigest:     s.deps.Table.Digest(),
 		Caution:         Caution,
-		Limits:          limitsMessage(s.deps.Limits, s.deps.Limits.blocks()),
+		Limits:          s.deps.Limits.blocks().message(),
 		Selections:      s.deps.Library.list(),
 	}, nil
 }

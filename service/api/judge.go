@@ -101,10 +101,9 @@ func (s *selectionService) open(stream judgeServer, open *kinegatev1.JudgeOpen) 
 		return nil, err
 	}
 	opened := &kinegatev1.JudgeOpened{
-		SelectionDigest: judging.compiled.digest,
-		Credit:          &kinegatev1.Credit{BlockCount: int64(limits.CreditBlocks), ByteCount: int64(limits.CreditBytes)},
-		Limits:          limitsMessage(limits, promised),
-		Hypotheses:      judging.compiled.outline,
+		Selection: judging.compiled.outline,
+		Credit:    &kinegatev1.Credit{BlockCount: int64(limits.CreditBlocks), ByteCount: int64(limits.CreditBytes)},
+		Limits:    promised.message(),
 	}
 	if err := stream.Send(&kinegatev1.JudgeResponse{Frame: &kinegatev1.JudgeResponse_Opened{Opened: opened}}); err != nil {
 		held.giveBack()

@@ -3,7 +3,6 @@ package api
 import (
 	"context"
 	"errors"
-	"sync"
 	"sync/atomic"
 	"time"
 
@@ -40,7 +39,10 @@ type judgeStream struct {
 	pending chan pendingBlock
 	replies chan *reply
 	// stop ends the reading, leave tells the writer to say goodbye.
-	stop, leave chan struct{}
+	stop  chan struct{}
+	leave chan kinegatev1.DrainReason
+	// outline is the digest of the selection whose outline the caller has. The judge's own.
+	outline string
 	// sending is when the send in progress began, in ns since the start; 0 for none.
 	sending atomic.Int64
 	start   time.Time
@@ -62,7 +64,8 @@ func newJudgeStream(s *selectionService, stream judgeServer, judging *judging, o
 		judging: judging, giveBack: giveBack, start: time.Now(),
 		pending: make(chan pendingBlock, limits.CreditBlocks),
 		replies: make(chan *reply),
-		stop:    make(chan struct{}), leave: make(chan struct{}),
+		stop:    make(chan struct{}), leave: make(chan kinegatev1.DrainReason, 1),
+		outline: judging.compiled.digest,
 		ledger: ledger{
 			blockCredit: int64(limits.CreditBlocks), byteCredit: int64(limits.CreditBytes),
 			received: open.GetFirstSequence() - 1, answered: open.GetFirstSequence() - 1,
@@ -135,7 +138,6 @@ func (j *judgeStream) watch(read, written <-chan error) ending {
 	}
 	limit := j.service.deps.StallLimit
 	draining := j.service.deps.Drain.Started
-	leave := sync.OnceFunc(func() { close(j.leave) })
 	var end ending
 	for {
 		select {
@@ -147,10 +149,11 @@ func (j *judgeStream) watch(read, written <-chan error) ending {
 				limit = min(limit, brokenGrace)
 			}
 		case <-draining:
-			draining = nil
-			leave()
+			draining, lifeOver = nil, nil
+			j.leave <- kinegatev1.DrainReason_DRAIN_REASON_SERVER_STOPS
 		case <-lifeOver:
-			leave()
+			draining, lifeOver = nil, nil
+			j.leave <- kinegatev1.DrainReason_DRAIN_REASON_CONNECTION_AGE
 		case <-look.C:
 			if since := j.sending.Load(); since > 0 && time.Since(j.start)-time.Duration(since) > limit {
 				end.write = errStalled
@@ -204,6 +207,9 @@ func (j *judgeStream) answer(ctx context.Context, p pendingBlock) (*reply, error
 	}
 	r, err := newReply(verdict, p)
 	workspaces.Put(w)
+	if err == nil && verdict.GetSelectionDigest() != j.outline {
+		r.taken, j.outline = j.judging.compiled.outline, verdict.GetSelectionDigest()
+	}
 	return r, err
 }
 

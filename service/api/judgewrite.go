@@ -17,6 +17,8 @@ type reply struct {
 	sequence int64
 	bytes    int64 // of the block answered
 	receipt  time.Time
+	// taken is the selection that took over before this verdict; nil where none did.
+	taken *kinegatev1.SelectionOutline
 
 	rejected bool
 	accepted int
@@ -72,6 +74,11 @@ func (j *judgeStream) write() error {
 			if !more {
 				return nil
 			}
+			if r.taken != nil {
+				if err := j.send(&kinegatev1.JudgeResponse{Frame: &kinegatev1.JudgeResponse_Taken{Taken: r.taken}}); err != nil {
+					return err
+				}
+			}
 			// The credit goes back first: the caller may use it before Send returns. The
 			// block's memory is free already.
 			j.ledger.answer(r.sequence, r.bytes)
@@ -86,12 +93,12 @@ func (j *judgeStream) write() error {
 			response = &kinegatev1.JudgeResponse{Frame: &kinegatev1.JudgeResponse_Heartbeat{Heartbeat: &kinegatev1.Heartbeat{
 				ReceivedSequence: received, AnsweredSequence: answered, OldestPendingS: oldest.Seconds(),
 			}}}
-		case <-leave:
+		case reason := <-leave:
 			leave, j.drained = nil, true
 			close(j.stop)
 			_, answered, _ := j.ledger.pulse(j.service.deps.Now())
 			response = &kinegatev1.JudgeResponse{Frame: &kinegatev1.JudgeResponse_Draining{Draining: &kinegatev1.Draining{
-				AnsweredSequence: answered, GraceS: j.service.deps.Drain.Grace.Seconds(),
+				AnsweredSequence: answered, GraceS: j.service.deps.Drain.Grace.Seconds(), Reason: reason,
 			}}}
 		}
 		if err := j.send(response); err != nil {

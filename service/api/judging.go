@@ -8,6 +8,7 @@ import (
 	"google.golang.org/protobuf/proto"
 
 	"example.org/kinegate/kinematics/event"
+	"example.org/kinegate/kinematics/fault"
 	"example.org/kinegate/kinematics/selection"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 )
@@ -39,6 +40,9 @@ func (s *selectionService) newJudging(
 	var err error
 	switch x := source.GetSource().(type) {
 	case *kinegatev1.SelectionSource_Given:
+		if follow {
+			return nil, fault.New(fault.Invalid, "open.follow", "true", "false for a selection sent along, which no other takes over")
+		}
 		if c, err = compile(x.Given, s.deps.Table); err != nil {
 			return nil, selectionError(x.Given.GetName(), In("selection.given", err))
 		}
@@ -53,7 +57,7 @@ func (s *selectionService) newJudging(
 		f.need("selection", "empty", "given or named")
 		return nil, f.faults
 	}
-	if largest, limit := c.largestReply(limits, j.detail), int64(s.deps.Limits.MessageBytes); largest > limit {
+	if largest, limit := c.largestReply(limits, j.detail), limits.messageBytes; largest > limit {
 		return nil, OverLimit(ReplyTooLarge, "the largest possible reply in bytes", largest, limit,
 			"promise smaller blocks, ask for fewer entries or record fewer observables")
 	}
@@ -122,7 +126,7 @@ func (j *judging) catchUp() {
 		return
 	}
 	largest := newest.largestReply(j.limits, j.detail)
-	if largest > int64(j.service.deps.Limits.MessageBytes) || !j.room(largest) {
+	if largest > j.limits.messageBytes || !j.room(largest) {
 		return
 	}
 	j.use(newest)

@@ -48,14 +48,21 @@ func DefaultLimits() Limits {
 	}
 }
 
-// blockLimits are the limits of the blocks of one caller: the server's own, or below.
-type blockLimits struct{ bytes, events, objects, candidates int64 }
+// blockLimits are the limits of one caller: the server's own, or below.
+type blockLimits struct {
+	bytes, events, objects, candidates int64
+	// eventObjects bounds the objects and the beam candidates of an event.
+	eventObjects int64
+	// messageBytes bounds the messages, both ways.
+	messageBytes int64
+}
 
-// blocks returns the limits of blocks.
+// blocks returns the limits of a caller who promised nothing.
 func (l Limits) blocks() blockLimits {
 	return blockLimits{
 		bytes: int64(l.BlockBytes), events: int64(l.BlockEvents),
 		objects: int64(l.BlockObjects), candidates: int64(l.BlockCandidates),
+		eventObjects: int64(l.EventObjects), messageBytes: int64(l.MessageBytes),
 	}
 }
 
@@ -70,6 +77,8 @@ func (b blockLimits) narrow(promise *kinegatev1.Limits) (blockLimits, error) {
 		{"block_byte_count", promise.GetBlockByteCount(), &b.bytes},
 		{"block_event_count", promise.GetBlockEventCount(), &b.events},
 		{"block_object_count", promise.GetBlockObjectCount(), &b.objects},
+		{"event_object_count", promise.GetEventObjectCount(), &b.eventObjects},
+		{"message_byte_count", promise.GetMessageByteCount(), &b.messageBytes},
 		{"block_candidate_count", promise.GetBlockCandidateCount(), &b.candidates},
 	} {
 		switch {
@@ -79,21 +88,23 @@ func (b blockLimits) narrow(promise *kinegatev1.Limits) (blockLimits, error) {
 			*x.limit = min(*x.limit, x.promise)
 		}
 	}
+	// A block travels in a message.
+	b.bytes = min(b.bytes, b.messageBytes)
 	return b, faults.Err()
 }
 
-// sizeOf returns the limits that just hold a block.
-func sizeOf(bytes int64, block *event.Block) blockLimits {
-	size := blockLimits{bytes: bytes, events: int64(block.Events()), objects: int64(block.Rows())}
+// of returns the limits that just hold a block.
+func (b blockLimits) of(bytes int64, block *event.Block) blockLimits {
+	b.bytes, b.events, b.objects, b.candidates = bytes, int64(block.Events()), int64(block.Rows()), 0
 	if block.Beam != nil {
-		size.candidates = int64(len(block.Beam.EnergyGeV))
+		b.candidates = int64(len(block.Beam.EnergyGeV))
 	}
-	return size
+	return b
 }
 
 // check refuses a block beyond the limits, naming both numbers.
 func (b blockLimits) check(bytes int64, block *event.Block) error {
-	size := sizeOf(bytes, block)
+	size := b.of(bytes, block)
 	for _, x := range []struct {
 		what          string
 		actual, limit int64
@@ -105,6 +116,25 @@ func (b blockLimits) check(bytes int64, block *event.Block) error {
 	} {
 		if x.actual > x.limit {
 			return b.over(x.what, x.actual, x.limit)
+		}
+	}
+	return b.checkEvents(block)
+}
+
+// checkEvents refuses a block with an event beyond what its caller promised. One beyond the
+// server's own limit has a status for that.
+func (b blockLimits) checkEvents(block *event.Block) error {
+	if b.eventObjects >= event.MaxObjectsPerEvent {
+		return nil
+	}
+	for i := range block.Events() {
+		first, end := block.Objects(i)
+		if n := int64(end - first); n > b.eventObjects {
+			return b.over("the number of objects of event "+strconv.Itoa(i), n, b.eventObjects)
+		}
+		first, end = block.Candidates(i)
+		if n := int64(end - first); n > b.eventObjects {
+			return b.over("the number of beam candidates of event "+strconv.Itoa(i), n, b.eventObjects)
 		}
 	}
 	return nil
@@ -120,14 +150,14 @@ func (b blockLimits) form() selection.Limits {
 	return selection.Limits{BlockBytes: b.bytes, Events: b.events, Objects: b.objects, Candidates: b.candidates}
 }
 
-// limitsMessage tells callers the limits.
-func limitsMessage(l Limits, b blockLimits) *kinegatev1.Limits {
+// message tells callers the limits.
+func (b blockLimits) message() *kinegatev1.Limits {
 	return &kinegatev1.Limits{
 		BlockByteCount:      b.bytes,
 		BlockEventCount:     b.events,
 		BlockObjectCount:    b.objects,
 		BlockCandidateCount: b.candidates,
-		EventObjectCount:    int64(l.EventObjects),
-		MessageByteCount:    int64(l.MessageBytes),
+		EventObjectCount:    b.eventObjects,
+		MessageByteCount:    b.messageBytes,
 	}
 }

@@ -60,7 +60,7 @@ func (s *selectionService) CheckSelection(_ context.Context, request *kinegatev1
 		return response, nil
 	}
 	response.SelectionDigest = c.digest
-	response.Hypotheses = c.outline
+	response.Hypotheses = c.outline.GetHypotheses()
 	response.LargestReplyByteCount = c.largestReply(s.deps.Limits.blocks(), selection.AllEntries)
 	return response, nil
 }
@@ -74,7 +74,7 @@ func (s *selectionService) JudgeBlock(ctx context.Context, request *kinegatev1.J
 	if err != nil {
 		return nil, In("block", err)
 	}
-	j, err := s.newJudging(request.GetSelection(), request.GetEntries(), sizeOf(bytes, block), false)
+	j, err := s.newJudging(request.GetSelection(), request.GetEntries(), s.deps.Limits.blocks().of(bytes, block), false)
 	if err != nil {
 		return nil, err
 	}
@@ -85,7 +85,7 @@ func (s *selectionService) JudgeBlock(ctx context.Context, request *kinegatev1.J
 	if err != nil {
 		return nil, err
 	}
-	return &kinegatev1.JudgeBlockResponse{Verdict: verdict}, nil
+	return &kinegatev1.JudgeBlockResponse{Verdict: verdict, Selection: j.compiled.outline}, nil
 }
 
 // onesCount counts the bits of a column.

@@ -113,7 +113,7 @@ func (f *former) beam(at string, m *kinegatev1.BeamSource) *selection.BeamSource
 }
 
 func timeWindow(m *kinegatev1.TimeWindow) selection.TimeWindow {
-	return selection.TimeWindow{MinNS: m.GetMinNs(), MaxNS: m.GetMaxNs(), Weight: m.Weight}
+	return selection.TimeWindow{MinNS: m.MinNs, MaxNS: m.MaxNs, Weight: m.Weight}
 }
 
 func (f *former) initialState(at string, m *kinegatev1.InitialState) *selection.InitialState {

@@ -75,7 +75,7 @@ func TestFitsEndToEnd(t *testing.T) {
 		t.Fatal(err)
 	}
 	defer stream.Close()
-	if dof := stream.Opened.GetHypotheses()[0].DegreesOfFreedom; dof == nil || *dof != 3 {
+	if dof := stream.Opened.GetSelection().GetHypotheses()[0].DegreesOfFreedom; dof == nil || *dof != 3 {
 		t.Errorf("the outline says %v degrees of freedom, want 3", dof)
 	}
 	if err := stream.Send(block); err != nil {

@@ -268,7 +268,7 @@ func TestFolderIsWatched(t *testing.T) {
 		return strings.Contains(r.log.String(), `"selection":"pairs"`)
 	})
 	_, opened := openJudge(t, r, namedPairs(false))
-	if len(opened.GetSelectionDigest()) != 64 {
+	if len(opened.GetSelection().GetSelectionDigest()) != 64 {
 		t.Errorf("opened %v", opened)
 	}
 }

@@ -92,7 +92,7 @@ func seeds() []proto.Message {
 		}}),
 		&kinegatev1.GetParticleRequest{Key: &kinegatev1.GetParticleRequest_Name{Name: "K+"}},
 		&kinegatev1.ListParticlesRequest{PageSize: 3, PageToken: "AAAA", NameContains: "K"},
-		&kinegatev1.DescribeDecayRequest{Decay: "Lambda -> p pi-", Parent: beam(2), DistancesM: []float64{0, 0.1}},
+		&kinegatev1.DescribeDecayRequest{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: "Lambda -> p pi-"}, Parent: beam(2), DistancesM: []float64{0, 0.1}},
 		&kinegatev1.TraceDalitzBoundaryRequest{
 			Form:       &kinegatev1.TraceDalitzBoundaryRequest_Process{Process: "omega -> pi+ pi- pi0"},
 			Resolution: 0.1, Bands: []*kinegatev1.DalitzBandRequest{{Products: []string{"pi+", "pi-"}, MassSquaredGev2: 0.3}},

@@ -118,8 +118,8 @@ func TestJudgeAnswersInOrder(t *testing.T) {
 	stream, opened := openJudge(t, r, &kinegatev1.JudgeOpen{
 		Selection: given(pairSelection()), FirstSequence: first, Entries: kinegatev1.EntryDetail_ENTRY_DETAIL_ACCEPTED,
 	})
-	if opened.GetCredit().GetBlockCount() != 8 || len(opened.GetSelectionDigest()) != 64 ||
-		len(opened.GetHypotheses()) != 1 || opened.GetHypotheses()[0].GetObservables()[0] != "mass" {
+	if opened.GetCredit().GetBlockCount() != 8 || len(opened.GetSelection().GetSelectionDigest()) != 64 ||
+		len(opened.GetSelection().GetHypotheses()) != 1 || opened.GetSelection().GetHypotheses()[0].GetObservables()[0] != "mass" {
 		t.Errorf("opened: %v", opened)
 	}
 	c := history.New(first)
@@ -144,7 +144,7 @@ func TestJudgeAnswersInOrder(t *testing.T) {
 		}
 		<-credit
 		c.Answered(v)
-		if v.GetEventCount() != events || v.GetSelectionDigest() != opened.GetSelectionDigest() {
+		if v.GetEventCount() != events || v.GetSelectionDigest() != opened.GetSelection().GetSelectionDigest() {
 			t.Fatalf("verdict %v", v)
 		}
 		for i := range events {
@@ -380,7 +380,8 @@ func TestJudgeDrains(t *testing.T) {
 	done := make(chan error, 1)
 	go func() { done <- r.Shutdown(t.Context()) }()
 	response, err := stream.Recv()
-	if d := response.GetDraining(); err != nil || d == nil || d.GetAnsweredSequence() != 0 || d.GetGraceS() <= 0 {
+	if d := response.GetDraining(); err != nil || d == nil || d.GetAnsweredSequence() != 0 || d.GetGraceS() <= 0 ||
+		d.GetReason() != kinegatev1.DrainReason_DRAIN_REASON_SERVER_STOPS {
 		t.Fatalf("%v, %v", response, err)
 	}
 	if _, err := stream.Recv(); !errors.Is(err, io.EOF) {

@@ -70,7 +70,8 @@ class JudgeStream::Runner {
     if (auto failed = link_->Open(open_, options_.opening, true)) throw Error(failed->error);
     opened_ = link_->opened();
     if (open_.selection().has_named() && !open_.follow()) {
-      open_.mutable_selection()->mutable_named()->set_selection_digest(opened_.selection_digest());
+      open_.mutable_selection()->mutable_named()->set_selection_digest(
+          opened_.selection().selection_digest());
     }
     const auto credit = std::max<std::int64_t>(opened_.credit().block_count(), 1);
     queue_->SetLimit(
@@ -132,11 +133,11 @@ class JudgeStream::Runner {
       }
       auto failed = link->Open(open_, options_.silence, false);
       if (!failed) {
-        const std::string& digest = link->opened().selection_digest();
-        if (open_.follow() || digest == opened_.selection_digest()) return std::nullopt;
+        const std::string& digest = link->opened().selection().selection_digest();
+        if (open_.follow() || digest == opened_.selection().selection_digest()) return std::nullopt;
         link->Leave();
         return Error("after the break the server would judge with another selection, " + digest + ", not " +
-                         opened_.selection_digest(),
+                         opened_.selection().selection_digest(),
                      grpc::StatusCode::FAILED_PRECONDITION);
       }
       if (closed() || !failed->passing) return failed->error;

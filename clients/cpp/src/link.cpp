@@ -119,7 +119,7 @@ void Link::Receive(const v1::JudgeOpen& open) {
   *request.mutable_open() = open;
   // A failed write shows at the read.
   stream_->Write(request);
-  if (auto broken = TakeFrames()) Cut(std::move(broken->error), broken->passing);
+  if (auto broken = TakeFrames(open.follow())) Cut(std::move(broken->error), broken->passing);
   // The sender must be gone before the status can be taken.
   queue_->Interrupt(turn_);
   {
@@ -143,11 +143,12 @@ void Link::Receive(const v1::JudgeOpen& open) {
 }
 
 // TakeFrames takes the opening and then what comes, and returns how the server broke the protocol.
-std::optional<Break> Link::TakeFrames() {
+std::optional<Break> Link::TakeFrames(bool follow) {
   v1::JudgeResponse response;
   if (!stream_->Read(&response)) return std::nullopt;
   if (!response.has_opened()) return Break{Broken("its first frame is no opening"), false};
   last_seen_ = Clock::now();
+  queue_->Announce(turn_, response.opened().selection());
   {
     const std::lock_guard lock(mutex_);
     opened_ = std::move(*response.mutable_opened());
@@ -162,6 +163,9 @@ std::optional<Break> Link::TakeFrames() {
       } catch (const Error& error) {
         return Break{Broken(error.what()), false};
       }
+    } else if (response.has_taken()) {
+      if (!follow) return Break{Broken("another selection took over"), false};
+      queue_->Announce(turn_, std::move(*response.mutable_taken()));
     } else if (response.has_draining()) {
       queue_->Drain(turn_);
     }

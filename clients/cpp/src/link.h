@@ -60,7 +60,7 @@ class Link : public std::enable_shared_from_this<Link> {
   using Stream = grpc::ClientReaderWriter<v1::JudgeRequest, v1::JudgeResponse>;
 
   void Receive(const v1::JudgeOpen& open);
-  std::optional<Break> TakeFrames();
+  std::optional<Break> TakeFrames(bool follow);
   void Send();
   void Over(Break why);
   bool Watch(std::chrono::milliseconds silence, const Stuck& stuck, const std::function<bool()>& until);

@@ -114,9 +114,27 @@ Queue::Next Queue::WaitNext(std::int64_t turn, Clock::time_point until) {
   }
 }
 
+void Queue::Announce(std::int64_t turn, v1::SelectionOutline outline) {
+  const std::lock_guard lock(mutex_);
+  if (turn != turn_) return;
+  std::string digest = outline.selection_digest();
+  outlines_[std::move(digest)] = std::make_shared<const v1::SelectionOutline>(std::move(outline));
+}
+
 void Queue::Settle(std::int64_t turn, v1::VerdictBlock block) {
   const std::int64_t late = ReadLate(late_, &block);
-  Verdicts verdicts(std::move(block));
+  std::shared_ptr<const v1::SelectionOutline> outline;
+  {
+    const std::lock_guard lock(mutex_);
+    if (turn != turn_) return;
+    const auto announced = outlines_.find(block.selection_digest());
+    if (announced == outlines_.end()) {
+      throw Error("verdict " + std::to_string(block.sequence()) +
+                  " is of a selection that was not announced");
+    }
+    outline = announced->second;
+  }
+  Verdicts verdicts(std::move(block), std::move(outline));
   const std::lock_guard lock(mutex_);
   if (turn != turn_) return;
   if (sent_ == 0 || verdicts.sequence() != waiting_.front().frame->block().sequence()) {

@@ -7,9 +7,11 @@
 #include <cstdint>
 #include <deque>
 #include <functional>
+#include <map>
 #include <memory>
 #include <mutex>
 #include <optional>
+#include <string>
 
 #include "kinegate/error.h"
 #include "kinegate/judge_stream.h"
@@ -76,8 +78,10 @@ class Queue {
   // last block, kOver after the turn.
   Next WaitNext(std::int64_t turn, Clock::time_point until);
 
+  // Announce takes the outline of a selection that is going to judge.
+  void Announce(std::int64_t turn, v1::SelectionOutline outline);
   // Settle takes a verdict. It throws where that is unsound, not on the oldest block or on another
-  // number of events, or where that block was not sent.
+  // number of events, of a selection that was not announced, or where that block was not sent.
   void Settle(std::int64_t turn, v1::VerdictBlock block);
   // last_answered is the sequence of the last verdict.
   std::int64_t last_answered() const;
@@ -118,6 +122,8 @@ class Queue {
   std::size_t limit_ = 0;
   std::int64_t next_;  // sequence of the next block
   std::int64_t late_count_ = 0;
+  // By digest: as many as versions of the selection were reloaded.
+  std::map<std::string, std::shared_ptr<const v1::SelectionOutline>> outlines_;
   bool finished_ = false;
   bool ended_ = false;
   std::optional<Error> why_;

@@ -109,7 +109,8 @@ std::vector<T> Slice(const std::string& column, const std::string& offsets, std:
 
 }  // namespace
 
-Verdicts::Verdicts(v1::VerdictBlock block) : block_(std::move(block)) {
+Verdicts::Verdicts(v1::VerdictBlock block, std::shared_ptr<const v1::SelectionOutline> outline)
+    : block_(std::move(block)), outline_(std::move(outline)) {
   if (rejected()) {
     block_.set_event_count(0);
     return;

@@ -304,6 +304,7 @@ class QueueRules : public ::testing::Test {
     v1::Credit credit;
     credit.set_block_count(1);
     credit.set_byte_count(1 << 20);
+    queue_.Announce(turn_, {});
     queue_.Grant(turn_, credit);
     EXPECT_EQ(Sent(), 5);
   }

@@ -103,12 +103,14 @@ TEST(Conformance, CallsCanFail) {
 // Outcome is what came of the blocks of a script.
 struct Outcome {
   std::vector<v1::VerdictBlock> verdicts;
+  std::vector<v1::SelectionOutline> outlines;  // of each
   bool failed = false;
 };
 
 Outcome Judge(const std::string& address, const Json& script, const std::string& late) {
   v1::JudgeOpen open;
   *open.mutable_selection() = Named("pairs");
+  open.set_follow(Member(script, "follow").bool_value());
   open.set_first_sequence(static_cast<std::int64_t>(Member(script, "first_sequence").number_value()));
   JudgeOptions options;
   options.late = late == "reject" ? LatePolicy::kReject : LatePolicy::kAccept;
@@ -120,7 +122,10 @@ Outcome Judge(const std::string& address, const Json& script, const std::string&
     for (const Json& form : blocks) {
       v1::EventBlock block;
       Fill(form, &block);
-      stream.Push(std::move(block), [&](const Verdicts& v) { outcome.verdicts.push_back(v.block()); });
+      stream.Push(std::move(block), [&](const Verdicts& v) {
+        outcome.verdicts.push_back(v.block());
+        outcome.outlines.push_back(v.outline());
+      });
     }
     stream.Finish();
   } catch (const Error&) {
@@ -138,6 +143,12 @@ std::string Breach(const Json& script, const Outcome& outcome) {
   for (int i = 0; i < due.size(); ++i) {
     const std::string differ = Differ("", due[i], Form(outcome.verdicts[static_cast<std::size_t>(i)]), 0);
     if (!differ.empty()) return rule + differ;
+  }
+  const auto& outlines = Member(script, "outlines").list_value().values();
+  for (int i = 0; i < outlines.size(); ++i) {
+    const std::string differ =
+        Differ("", outlines[i], Form(outcome.outlines[static_cast<std::size_t>(i)]), 0);
+    if (!differ.empty()) return rule + "outline" + differ;
   }
   return "";
 }

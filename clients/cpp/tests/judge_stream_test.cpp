@@ -36,13 +36,13 @@ TEST(JudgeStream, FuturesHoldVerdictsAndTheOpeningIsKnown) {
   Server server;
   const Sample sample(10);
   JudgeStream stream(Gate(server.address()), OpenWith(PairSelection()));
-  EXPECT_EQ(stream.opened().selection_digest().size(), 64U);
+  EXPECT_EQ(stream.opened().selection().selection_digest().size(), 64U);
   EXPECT_EQ(stream.opened().hypotheses(0).observables(0), "mass");
   auto first = stream.Push(MakeBlock(sample.arrays(), 0, 6));
   auto second = stream.Push(MakeBlock(sample.arrays(), 6, 4));
   EXPECT_EQ(second.get().sequence(), 1);
   const Verdicts verdicts = first.get();
-  EXPECT_EQ(verdicts.digest(), stream.opened().selection_digest());
+  EXPECT_EQ(verdicts.digest(), stream.opened().selection().selection_digest());
   ASSERT_FALSE(verdicts.entries(0).empty());
   EXPECT_EQ(verdicts.entries(0)[0].observables.size(), 1U);
   stream.Finish();

@@ -61,11 +61,14 @@ func TestClientKeepsTheRules(t *testing.T) {
 				t.Fatal(err)
 			}
 			defer client.Close() //nolint:errcheck // it has nothing else to do
-			verdicts, failed := run(t, client, s)
+			verdicts, outlines, failed := run(t, client, s)
 			if err := double.Result(); err != nil {
 				t.Error(err)
 			}
 			if err := s.CheckVerdicts(verdicts, failed); err != nil {
+				t.Fatal(err)
+			}
+			if err := s.CheckOutlines(outlines); err != nil {
 				t.Error(err)
 			}
 		})
@@ -73,7 +76,9 @@ func TestClientKeepsTheRules(t *testing.T) {
 }
 
 // run pushes the blocks of a script and returns what came back.
-func run(t *testing.T, client *kinegate.Client, s *conformance.Script) (verdicts []*kinegatev1.VerdictBlock, failed bool) {
+func run(
+	t *testing.T, client *kinegate.Client, s *conformance.Script,
+) (verdicts []*kinegatev1.VerdictBlock, outlines []*kinegatev1.SelectionOutline, failed bool) {
 	t.Helper()
 	options := kinegate.JudgeOptions{Queue: len(s.Blocks)}
 	if s.Late == "reject" {
@@ -97,9 +102,9 @@ func run(t *testing.T, client *kinegate.Client, s *conformance.Script) (verdicts
 	for {
 		v, err := stream.Recv()
 		if err != nil {
-			return verdicts, !errors.Is(err, io.EOF)
+			return verdicts, outlines, !errors.Is(err, io.EOF)
 		}
-		verdicts = append(verdicts, v)
+		verdicts, outlines = append(verdicts, v), append(outlines, stream.Outline(v))
 	}
 }
 

@@ -12,6 +12,7 @@ import (
 	"google.golang.org/grpc/metadata"
 	"google.golang.org/grpc/status"
 	"google.golang.org/protobuf/encoding/protojson"
+	"google.golang.org/protobuf/proto"
 
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 )
@@ -127,6 +128,12 @@ func (c *connection) play(s *Step) (done bool, end, breach error) {
 	case s.Server != nil:
 		response := &kinegatev1.JudgeResponse{}
 		if err := protojson.Unmarshal(s.Server, response); err != nil {
+			return false, nil, err
+		}
+		return false, nil, c.stream.Send(response)
+	case s.Unknown != nil:
+		response := &kinegatev1.JudgeResponse{}
+		if err := proto.Unmarshal(s.Unknown, response); err != nil {
 			return false, nil, err
 		}
 		return false, nil, c.stream.Send(response)

@@ -82,11 +82,11 @@ func (c *session) connection(st stream) (over bool, err error) {
 		return true, err
 	}
 	opened := response.GetOpened()
-	if c.digest != "" && opened.GetSelectionDigest() != c.digest && !c.takesAnyDigest {
+	if c.digest != "" && opened.GetSelection().GetSelectionDigest() != c.digest && !c.takesAnyDigest {
 		_ = st.CloseSend()
 		return true, errors.New("another selection")
 	}
-	c.digest = opened.GetSelectionDigest()
+	c.digest = opened.GetSelection().GetSelectionDigest()
 	c.sent = c.answered
 	draining := false
 	for {

@@ -23,6 +23,8 @@ type Script struct {
 	Late string `json:"late"`
 	// FirstSequence is that of the stream.
 	FirstSequence int64 `json:"first_sequence"`
+	// Follow says that the caller lets reloaded selections take over.
+	Follow bool `json:"follow,omitempty"`
 	// Blocks are what the caller pushes at once.
 	Blocks []json.RawMessage `json:"blocks"`
 	// Connections are what happens on each, one after the other.
@@ -30,6 +32,9 @@ type Script struct {
 	// Verdicts are what the client must hand to its caller, in part; Rule is what it
 	// breaks otherwise.
 	Verdicts []json.RawMessage `json:"verdicts"`
+	// Outlines are what the client must say of the selection of each verdict, in part; none
+	// where that is free.
+	Outlines []json.RawMessage `json:"outlines,omitempty"`
 	// Rule names what a client breaks that hands out other verdicts.
 	Rule string `json:"rule"`
 	// Fails says that the client must tell its caller that the stream failed.
@@ -46,6 +51,8 @@ type Step struct {
 	QuietS float64 `json:"quiet_s,omitempty"`
 	// Server is a frame that the server sends next.
 	Server json.RawMessage `json:"server,omitempty"`
+	// Unknown is a frame of a newer server, encoded.
+	Unknown []byte `json:"unknown,omitempty"`
 	// End ends the rpc: "ok", "cut" as by the transport, or "left": the server does
 	// nothing until the client leaves.
 	End string `json:"end,omitempty"`
@@ -84,6 +91,7 @@ func (s *Script) Open() *kinegatev1.JudgeOpen {
 		}},
 		FirstSequence: s.FirstSequence,
 		Entries:       kinegatev1.EntryDetail_ENTRY_DETAIL_NONE,
+		Follow:        s.Follow,
 	}
 }
 
@@ -102,6 +110,20 @@ func (s *Script) CheckVerdicts(verdicts []*kinegatev1.VerdictBlock, failed bool)
 		}
 		if err := compare(s.Verdicts[i], came, DefaultTolerance); err != nil {
 			return &BreachError{s.Rule, fmt.Sprintf("verdict %d: %v", i, err)}
+		}
+	}
+	return nil
+}
+
+// CheckOutlines compares what a client said of the selections of its verdicts.
+func (s *Script) CheckOutlines(outlines []*kinegatev1.SelectionOutline) error {
+	for i, due := range s.Outlines {
+		came, err := form(outlines[i])
+		if err != nil {
+			return err
+		}
+		if err := compare(due, came, DefaultTolerance); err != nil {
+			return &BreachError{s.Rule, fmt.Sprintf("outline of verdict %d: %v", i, err)}
 		}
 	}
 	return nil

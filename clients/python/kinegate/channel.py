@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Protocol
 
+from kinegate.enums import word
 from kinegate.units import format_angle, format_energy
 from kinegate.v1 import channel_pb2
 
@@ -69,7 +70,7 @@ class Channel(Protocol):
 
 def state_name(message: Channel) -> str:
     """Return the name of a state, such as "OPEN"."""
-    return channel_pb2.ChannelState.Name(message.state).removeprefix("CHANNEL_STATE_")
+    return word(channel_pb2.ChannelState, message.state)
 
 
 def is_open(state: str) -> bool:

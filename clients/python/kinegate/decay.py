@@ -6,6 +6,7 @@ from typing import TYPE_CHECKING
 
 from kinegate import units
 from kinegate.channel import Limits, Range, angles, energies, is_open, limit_rows, state_name
+from kinegate.enums import word
 from kinegate.initial import beam_motion
 from kinegate.question import Answer, Question
 from kinegate.tables import Table
@@ -45,8 +46,7 @@ class Decay(Answer[decay_pb2.DescribeDecayResponse]):
     @property
     def decay_class(self) -> str:
         """STRONG, ELECTROMAGNETIC or WEAK."""
-        name = reaction_pb2.DecayClass.Name(self.message.decay_class)
-        return name.removeprefix("DECAY_CLASS_")
+        return word(reaction_pb2.DecayClass, self.message.decay_class)
 
     @property
     def released_energy(self) -> float:

@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
+from kinegate.enums import word
 from kinegate.question import Answer
 from kinegate.tables import Table
 from kinegate.v1 import explanation_pb2, fit_pb2, verdict_pb2
@@ -120,7 +121,7 @@ class Assignment:
         """How the fit ended, such as "CONVERGED"; empty without one."""
         if self.fit is None:
             return ""
-        return fit_pb2.FitStatus.Name(self.fit.status).removeprefix("FIT_STATUS_")
+        return word(fit_pb2.FitStatus, self.fit.status)
 
     @property
     def probability(self) -> float | None:
@@ -241,7 +242,7 @@ class Explanation(Answer[explanation_pb2.ExplainVerdictResponse]):
     @property
     def status(self) -> str:
         """Status of the event, such as "JUDGED"."""
-        return verdict_pb2.EventStatus.Name(self.message.status).removeprefix("EVENT_STATUS_")
+        return word(verdict_pb2.EventStatus, self.message.status)
 
     @property
     def gate(self) -> bool:

@@ -65,8 +65,9 @@ class Truth:
     """Mass in this event in GeV, shape (particles,)."""
     parents: NDArray[np.int16]
     """Row of the parent within the event, -1 for none, shape (particles,)."""
-    object_particles: NDArray[np.int16]
-    """Row of the particle behind each measured object, -1 for noise, shape (objects,)."""
+    object_particles: NDArray[np.int16] | None
+    """Row of the particle behind each measured object, -1 for noise, shape (objects,);
+    None without a detector."""
     message: truth_pb2.TruthColumns | None
     """The reply, for vertices, proper times and beam candidates; None for joined blocks."""
 
@@ -84,7 +85,9 @@ class Truth:
             _four(message.momentum),
             columns.view(message.mass_gev, f8),
             columns.view(message.parents, np.int16),
-            columns.view(message.object_particles, np.int16),
+            columns.view(message.object_particles, np.int16)
+            if message.HasField("object_particles")
+            else None,
             message,
         )
 
@@ -93,9 +96,11 @@ class Truth:
         """Join the truth of blocks that follow one another."""
         names = ("event_ids", "channels", "weights", "particle_numbers", "masses", "parents")
         joined: dict[str, Any] = {
-            name: np.concatenate([getattr(p, name) for p in parts])
-            for name in (*names, "object_particles")
+            name: np.concatenate([getattr(p, name) for p in parts]) for name in names
         }
+        behind = [p.object_particles for p in parts]
+        seen = [b for b in behind if b is not None]
+        joined["object_particles"] = np.concatenate(seen) if len(seen) == len(parts) else None
         for name in ("initial_state", "momentum"):
             found = [getattr(p, name) for p in parts]
             joined[name] = {n: np.concatenate([f[n] for f in found]) for n in _FOUR}

@@ -141,7 +141,6 @@ class Protocol:
     def __init__(self, settings: Settings) -> None:
         self.settings = settings
         self.digest = settings.selection.digest
-        self.hypotheses: list[Hypothesis] = list(settings.selection.hypotheses.values())
         self.reconnects = 0
         """Streams opened after the first."""
         self.late_count = 0
@@ -150,6 +149,9 @@ class Protocol:
         """The server said that it will leave."""
         self.lost = ""
         """Why the connection at hand was given up; empty where it was not."""
+        # How the selections that judge, or have judged, were understood, by digest: as many as
+        # versions were reloaded.
+        self._outlines: dict[str, tuple[list[Hypothesis], list[str]]] = {}
         self._waiting: deque[_Waiting] = deque()
         self._next = settings.first_sequence
         self._sent = 0  # of those waiting, on this connection
@@ -267,6 +269,8 @@ class Protocol:
         kind = response.WhichOneof("frame")
         if kind == "opened":
             self._opened(response.opened)
+        elif kind == "taken":
+            self._announced(response.taken)
         elif kind == "draining":
             self.draining = True
         elif kind == "verdict":
@@ -280,14 +284,20 @@ class Protocol:
     def _opened(self, opened: selection_pb2.JudgeOpened) -> None:
         if self._credit is not None:
             raise StreamBroken("the server opened the stream twice")
-        if self.digest and opened.selection_digest != self.digest and not self.settings.follow:
+        self._announced(opened.selection)
+        self._credit = opened.credit
+
+    def _announced(self, selection: selection_pb2.SelectionOutline) -> None:
+        """Take the selection that judges from now on."""
+        digest = selection.selection_digest
+        if self.digest and digest != self.digest and not self.settings.follow:
             raise StreamBroken(
-                f"the server judges with digest {opened.selection_digest}, not {self.digest}: "
+                f"the server judges with digest {digest}, not {self.digest}: "
                 "its particle table or numerics differ from those that the stream began with"
             )
-        self.digest = opened.selection_digest
-        self.hypotheses = list(outline(opened.hypotheses).values())
-        self._credit = opened.credit
+        self.digest = digest
+        hypotheses = list(outline(selection.hypotheses).values())
+        self._outlines[digest] = hypotheses, list(selection.groups)
 
     def _answered(
         self, verdict: verdict_pb2.VerdictBlock
@@ -295,6 +305,10 @@ class Protocol:
         expected = self._next - len(self._waiting)
         if self._sent == 0 or verdict.sequence != expected:
             raise StreamBroken(f"verdict {verdict.sequence} came where {expected} was due")
+        if verdict.selection_digest not in self._outlines:
+            raise StreamBroken(
+                f"verdict {verdict.sequence} is of a selection that was not announced"
+            )
         block = self._waiting.popleft()
         self._sent -= 1
         self._sent_bytes -= block.size
@@ -302,10 +316,11 @@ class Protocol:
 
     def read(self, events: Events, verdict: verdict_pb2.VerdictBlock) -> Verdicts:
         """Read a verdict by the caller's policy for late events, and count these."""
+        hypotheses, groups = self._outlines[verdict.selection_digest]
         verdicts = Verdicts.from_message(
             verdict,
-            self.hypotheses,
-            self.settings.selection.groups,
+            hypotheses,
+            groups,
             events.event_ids,
             accept_late=self.settings.late == "accept",
         )

@@ -13,6 +13,7 @@ from kinegate.channel import (
     product_limits,
     state_name,
 )
+from kinegate.enums import word
 from kinegate.errors import ArgumentError
 from kinegate.initial import Beams, initial_state
 from kinegate.question import Answer, Question
@@ -206,5 +207,5 @@ def reaction(
 
 
 def _transfer_name(message: reaction_pb2.MomentumTransferLimits) -> str:
-    initial = reaction_pb2.InitialParticle.Name(message.initial)
-    return f"t({initial.removeprefix('INITIAL_PARTICLE_').lower()}, {' '.join(message.products)})"
+    initial = word(reaction_pb2.InitialParticle, message.initial).lower()
+    return f"t({initial}, {' '.join(message.products)})"

@@ -85,9 +85,10 @@ class Selection:
         )
 
         def read(replies: Sequence[Any]) -> Verdicts:
-            verdict = replies[0].verdict
+            reply = replies[0]
+            hypotheses = list(outline(reply.selection.hypotheses).values())
             return Verdicts.from_message(
-                verdict, list(self.hypotheses.values()), self.groups, events.event_ids
+                reply.verdict, hypotheses, reply.selection.groups, events.event_ids
             )
 
         return Question("SelectionService", "JudgeBlock", request, read)

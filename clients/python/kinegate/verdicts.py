@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING, Any, Final, Self
 import numpy as np
 
 from kinegate import columns, frames
+from kinegate.enums import words
 from kinegate.errors import ArgumentError, BlockRejected, FieldViolation
 from kinegate.parts import join_offsets
 from kinegate.tables import Table
@@ -23,14 +24,6 @@ if TYPE_CHECKING:
 __all__ = ["Entries", "Fits", "Observable", "Verdicts"]
 
 _EXPIRED: Final = int(verdict_pb2.EVENT_STATUS_EXPIRED)
-_STATUS_NAMES: Final = np.array(
-    [name.removeprefix("EVENT_STATUS_") for name in verdict_pb2.EventStatus.keys()],  # noqa: SIM118
-    object,
-)
-_FIT_STATUS_NAMES: Final = np.array(
-    [name.removeprefix("FIT_STATUS_") for name in fit_pb2.FitStatus.keys()],  # noqa: SIM118
-    object,
-)
 
 
 @dataclass(frozen=True)
@@ -230,6 +223,9 @@ class Verdicts:
         if not parts:
             raise ArgumentError("no verdicts to join")
         first = parts[0]
+        meanings = [(p.hypotheses, list(p.best)) for p in parts]
+        if any(m != meanings[0] for m in meanings):
+            raise ArgumentError("verdicts of selections with other hypotheses cannot be joined")
         entries = [p.entries for p in parts]
         found = [e for e in entries if e is not None]
         return cls(
@@ -255,8 +251,7 @@ class Verdicts:
     @property
     def status_names(self) -> NDArray[np.object_]:
         """Status of each event in words, such as "JUDGED"."""
-        names: NDArray[np.object_] = _STATUS_NAMES[self.statuses]
-        return names
+        return words(verdict_pb2.EventStatus, self.statuses)
 
     def best_names(self, group: str) -> NDArray[np.object_]:
         """Return the name of the best hypothesis of a group; empty where none accepts."""
@@ -308,7 +303,7 @@ class Verdicts:
             entries.degrees_of_freedom[rows],
             entries.probability[rows],
             statuses == int(fit_pb2.FIT_STATUS_CONVERGED),
-            _FIT_STATUS_NAMES[statuses],
+            words(fit_pb2.FitStatus, statuses),
             entries.iteration_counts[rows],
             entries.weight[rows],
             entries.events[rows],

@@ -129,6 +129,7 @@ class Outcome:
     held: str
     """What the double says: "held", or the rule that was broken."""
     verdicts: list[dict[str, Any]]
+    outlines: list[dict[str, Any]]
     failed: bool
 
     def check(self, script: dict[str, Any]) -> None:
@@ -137,6 +138,8 @@ class Outcome:
         assert self.failed == script.get("fails", False), script["rule"]
         assert len(self.verdicts) == len(due), script["rule"]
         for mine, theirs in zip(self.verdicts, due, strict=True):
+            agree(script["rule"], theirs, mine, 0)
+        for mine, theirs in zip(self.outlines, script.get("outlines", []), strict=False):
             agree(script["rule"], theirs, mine, 0)
 
 
@@ -150,18 +153,21 @@ def play(double: str, name: str, late: str) -> Outcome:
         with subprocess.Popen(command, stdout=subprocess.PIPE, text=True) as process:
             assert process.stdout is not None
             assert process.stdout.readline() == "listening\n"
-            verdicts, failed = judge(script, address, late)
+            verdicts, outlines, failed = judge(script, address, late)
             process.send_signal(signal.SIGTERM)
             held = process.stdout.read().strip()
-        return Outcome(held, verdicts, failed)
+        return Outcome(held, verdicts, outlines, failed)
 
 
-def judge(script: dict[str, Any], address: str, late: str) -> tuple[list[dict[str, Any]], bool]:
+def judge(
+    script: dict[str, Any], address: str, late: str
+) -> tuple[list[dict[str, Any]], list[dict[str, Any]], bool]:
     blocks = [
         Events.from_message(json_format.ParseDict(b, event_pb2.EventBlock()))
         for b in script["blocks"]
     ]
     verdicts: list[dict[str, Any]] = []
+    outlines: list[dict[str, Any]] = []
     with kinegate.connect(address, gate_address=address) as client:
         try:
             for _, verdict in client.judge(
@@ -169,14 +175,23 @@ def judge(script: dict[str, Any], address: str, late: str) -> tuple[list[dict[st
                 Selection.named("pairs"),
                 late=late,
                 first_sequence=script["first_sequence"],
+                follow=script.get("follow", False),
                 patience=10,
             ):
                 bits = sum(int(bit) << i for i, bit in enumerate(verdict.gate))
                 gate = base64.b64encode(bytes([bits])).decode()
+                assert len(verdict.status_names) == len(verdict)
                 verdicts.append({"sequence": str(verdict.sequence), "gate": gate})
+                outlines.append(
+                    {
+                        "selection_digest": verdict.digest,
+                        "hypotheses": [{"name": h.name} for h in verdict.hypotheses],
+                        "groups": list(verdict.best),
+                    }
+                )
         except kinegate.KinegateError:
-            return verdicts, True
-    return verdicts, False
+            return verdicts, outlines, True
+    return verdicts, outlines, False
 
 
 @pytest.mark.parametrize("name", STREAMS)

@@ -226,6 +226,10 @@ def test_named_selection(testdata: Path, dimuons: Events) -> None:
             verdicts = [v for _, v in client.judge(dimuons, selection)]
             assert verdicts[0].accepted["Z"].dtype == bool
             assert {v.digest for v in verdicts} == set(digests[:1])
+            block = client.judge_block(dimuons.cut(0, 100), selection)
+            assert list(block.accepted) == list(verdicts[0].accepted)
+            assert (block.accepted["Z"] == verdicts[0].accepted["Z"][:100]).all()
+            assert len(block.observable("dimuon", "M").values) == block.accepted["dimuon"].sum()
         with pytest.raises(kinegate.FailedPrecondition) as caught:
             list(client.judge(dimuons, kinegate.Selection.named("dimuon", "00" * 32)))
         assert caught.value.reason == "DIGEST_GONE"

@@ -15,14 +15,20 @@ def block(n: int = 10) -> Events:
     return Events.of(px_gev=ones, py_gev=ones, pz_gev=ones, mass_gev=ones, classes=[2, 3])
 
 
+def outline(digest: str, *hypotheses: str) -> selection_pb2.SelectionOutline:
+    names = [selection_pb2.HypothesisOutline(name=name) for name in hypotheses]
+    return selection_pb2.SelectionOutline(selection_digest=digest, hypotheses=names)
+
+
 def opened(digest: str = "d", blocks: int = 3, size: int = 1 << 20) -> selection_pb2.JudgeResponse:
     credit = selection_pb2.Credit(block_count=blocks, byte_count=size)
-    opening = selection_pb2.JudgeOpened(selection_digest=digest, credit=credit)
+    opening = selection_pb2.JudgeOpened(selection=outline(digest), credit=credit)
     return selection_pb2.JudgeResponse(opened=opening)
 
 
-def verdict(sequence: int) -> selection_pb2.JudgeResponse:
-    return selection_pb2.JudgeResponse(verdict=verdict_pb2.VerdictBlock(sequence=sequence))
+def verdict(sequence: int, digest: str = "d") -> selection_pb2.JudgeResponse:
+    answer = verdict_pb2.VerdictBlock(sequence=sequence, selection_digest=digest)
+    return selection_pb2.JudgeResponse(verdict=answer)
 
 
 def started(blocks: int = 5, first: int = 0) -> Protocol:
@@ -116,7 +122,7 @@ def test_resume_begins_with_the_first_unanswered() -> None:
     protocol = started()
     protocol.incoming(opened("the digest"), 0.1)
     sent(protocol)
-    protocol.incoming(verdict(0), 0.2)
+    protocol.incoming(verdict(0, "the digest"), 0.2)
     opening = protocol.connect(1.0).open
     assert opening.first_sequence == 1
     assert opening.selection.named.selection_digest == "the digest"
@@ -130,6 +136,17 @@ def test_another_digest_is_refused_on_resume() -> None:
     protocol.connect(1.0)
     with pytest.raises(StreamBroken, match="digest"):
         protocol.incoming(opened("another"), 1.1)
+
+
+def test_another_selection_takes_over_where_it_is_followed_only() -> None:
+    protocol = started()
+    protocol.incoming(opened(), 0.1)
+    sent(protocol)
+    taken = selection_pb2.JudgeResponse(taken=outline("another"))
+    with pytest.raises(StreamBroken, match="digest"):
+        protocol.incoming(taken, 0.2)
+    with pytest.raises(StreamBroken, match="not announced"):
+        protocol.incoming(verdict(0, "another"), 0.2)
 
 
 @pytest.mark.parametrize("sequence", [1, -1, 7])

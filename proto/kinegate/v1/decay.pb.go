@@ -26,16 +26,18 @@ const (
 // DescribeDecayRequest is a decay and the motion of the parent.
 type DescribeDecayRequest struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
-	// Decay in text, such as "Lambda -> p pi-". A comma adds the decay of a daughter,
-	// whose daughters then have limits too.
-	Decay string `protobuf:"bytes,1,opt,name=decay,proto3" json:"decay,omitempty"`
+	// Exactly one member must be set.
+	//
+	// Types that are valid to be assigned to Form:
+	//
+	//	*DescribeDecayRequest_Decay
+	//	*DescribeDecayRequest_StructuredDecay
+	Form isDescribeDecayRequest_Form `protobuf_oneof:"form"`
 	// Motion of the parent along +z; absent means at rest.
 	Parent *BeamMotion `protobuf:"bytes,2,opt,name=parent,proto3" json:"parent,omitempty"`
 	// Distances from the parent's origin at which the surviving fraction is
 	// wanted, each at least 0, at most 1,000 of them.
 	DistancesM []float64 `protobuf:"fixed64,3,rep,packed,name=distances_m,json=distancesM,proto3" json:"distances_m,omitempty"`
-	// The decay in structured form, in place of the text.
-	StructuredDecay *Reaction `protobuf:"bytes,4,opt,name=structured_decay,json=structuredDecay,proto3" json:"structured_decay,omitempty"`
 	// Stretches of the flight in which the decaying fraction is wanted, at most
 	// 1,000 of them.
 	Intervals []*DistanceInterval `protobuf:"bytes,5,rep,name=intervals,proto3" json:"intervals,omitempty"`
@@ -83,11 +85,29 @@ func (*DescribeDecayRequest) Descriptor() ([]byte, []int) {
 	return file_kinegate_v1_decay_proto_rawDescGZIP(), []int{0}
 }
 
+func (x *DescribeDecayRequest) GetForm() isDescribeDecayRequest_Form {
+	if x != nil {
+		return x.Form
+	}
+	return nil
+}
+
 func (x *DescribeDecayRequest) GetDecay() string {
 	if x != nil {
-		return x.Decay
+		if x, ok := x.Form.(*DescribeDecayRequest_Decay); ok {
+			return x.Decay
+		}
 	}
 	return ""
+}
+
+func (x *DescribeDecayRequest) GetStructuredDecay() *Reaction {
+	if x != nil {
+		if x, ok := x.Form.(*DescribeDecayRequest_StructuredDecay); ok {
+			return x.StructuredDecay
+		}
+	}
+	return nil
 }
 
 func (x *DescribeDecayRequest) GetParent() *BeamMotion {
@@ -100,13 +120,6 @@ func (x *DescribeDecayRequest) GetParent() *BeamMotion {
 func (x *DescribeDecayRequest) GetDistancesM() []float64 {
 	if x != nil {
 		return x.DistancesM
-	}
-	return nil
-}
-
-func (x *DescribeDecayRequest) GetStructuredDecay() *Reaction {
-	if x != nil {
-		return x.StructuredDecay
 	}
 	return nil
 }
@@ -138,6 +151,25 @@ func (x *DescribeDecayRequest) GetLaboratoryAnglesRad() []float64 {
 	}
 	return nil
 }
+
+type isDescribeDecayRequest_Form interface {
+	isDescribeDecayRequest_Form()
+}
+
+type DescribeDecayRequest_Decay struct {
+	// Decay in text, such as "Lambda -> p pi-". A comma adds the decay of a
+	// daughter, whose daughters then have limits too.
+	Decay string `protobuf:"bytes,1,opt,name=decay,proto3,oneof"`
+}
+
+type DescribeDecayRequest_StructuredDecay struct {
+	// The same in structured form.
+	StructuredDecay *Reaction `protobuf:"bytes,4,opt,name=structured_decay,json=structuredDecay,proto3,oneof"`
+}
+
+func (*DescribeDecayRequest_Decay) isDescribeDecayRequest_Form() {}
+
+func (*DescribeDecayRequest_StructuredDecay) isDescribeDecayRequest_Form() {}
 
 // DistanceInterval is a stretch of the flight.
 type DistanceInterval struct {
@@ -939,17 +971,18 @@ var File_kinegate_v1_decay_proto protoreflect.FileDescriptor
 
 const file_kinegate_v1_decay_proto_rawDesc = "" +
 	"\n" +
-	"\x17kinegate/v1/decay.proto\x12\vkinegate.v1\x1a\x19kinegate/v1/channel.proto\x1a\x18kinegate/v1/dalitz.proto\x1a\x1ckinegate/v1/kinematics.proto\x1a\x1akinegate/v1/reaction.proto\"\x8d\x03\n" +
-	"\x14DescribeDecayRequest\x12\x14\n" +
-	"\x05decay\x18\x01 \x01(\tR\x05decay\x12/\n" +
+	"\x17kinegate/v1/decay.proto\x12\vkinegate.v1\x1a\x19kinegate/v1/channel.proto\x1a\x18kinegate/v1/dalitz.proto\x1a\x1ckinegate/v1/kinematics.proto\x1a\x1akinegate/v1/reaction.proto\"\x99\x03\n" +
+	"\x14DescribeDecayRequest\x12\x16\n" +
+	"\x05decay\x18\x01 \x01(\tH\x00R\x05decay\x12B\n" +
+	"\x10structured_decay\x18\x04 \x01(\v2\x15.kinegate.v1.ReactionH\x00R\x0fstructuredDecay\x12/\n" +
 	"\x06parent\x18\x02 \x01(\v2\x17.kinegate.v1.BeamMotionR\x06parent\x12\x1f\n" +
 	"\vdistances_m\x18\x03 \x03(\x01R\n" +
-	"distancesM\x12@\n" +
-	"\x10structured_decay\x18\x04 \x01(\v2\x15.kinegate.v1.ReactionR\x0fstructuredDecay\x12;\n" +
+	"distancesM\x12;\n" +
 	"\tintervals\x18\x05 \x03(\v2\x1d.kinegate.v1.DistanceIntervalR\tintervals\x12,\n" +
 	"\x12opening_angles_rad\x18\x06 \x03(\x01R\x10openingAnglesRad\x12,\n" +
 	"\x12rest_frame_cosines\x18\a \x03(\x01R\x10restFrameCosines\x122\n" +
-	"\x15laboratory_angles_rad\x18\b \x03(\x01R\x13laboratoryAnglesRad\"J\n" +
+	"\x15laboratory_angles_rad\x18\b \x03(\x01R\x13laboratoryAnglesRadB\x06\n" +
+	"\x04form\"J\n" +
 	"\x10DistanceInterval\x12\x15\n" +
 	"\x06from_m\x18\x01 \x01(\x01R\x05fromM\x12\x16\n" +
 	"\x04to_m\x18\x02 \x01(\x01H\x00R\x03toM\x88\x01\x01B\a\n" +
@@ -1046,8 +1079,8 @@ var file_kinegate_v1_decay_proto_goTypes = []any{
 	(*DecaySolution)(nil),               // 7: kinegate.v1.DecaySolution
 	(*DecayPair)(nil),                   // 8: kinegate.v1.DecayPair
 	(*DecayMotion)(nil),                 // 9: kinegate.v1.DecayMotion
-	(*BeamMotion)(nil),                  // 10: kinegate.v1.BeamMotion
-	(*Reaction)(nil),                    // 11: kinegate.v1.Reaction
+	(*Reaction)(nil),                    // 10: kinegate.v1.Reaction
+	(*BeamMotion)(nil),                  // 11: kinegate.v1.BeamMotion
 	(ChannelState)(0),                   // 12: kinegate.v1.ChannelState
 	(DecayClass)(0),                     // 13: kinegate.v1.DecayClass
 	(*AngleRange)(nil),                  // 14: kinegate.v1.AngleRange
@@ -1057,8 +1090,8 @@ var file_kinegate_v1_decay_proto_goTypes = []any{
 	(*TraceDalitzBoundaryResponse)(nil), // 18: kinegate.v1.TraceDalitzBoundaryResponse
 }
 var file_kinegate_v1_decay_proto_depIdxs = []int32{
-	10, // 0: kinegate.v1.DescribeDecayRequest.parent:type_name -> kinegate.v1.BeamMotion
-	11, // 1: kinegate.v1.DescribeDecayRequest.structured_decay:type_name -> kinegate.v1.Reaction
+	10, // 0: kinegate.v1.DescribeDecayRequest.structured_decay:type_name -> kinegate.v1.Reaction
+	11, // 1: kinegate.v1.DescribeDecayRequest.parent:type_name -> kinegate.v1.BeamMotion
 	1,  // 2: kinegate.v1.DescribeDecayRequest.intervals:type_name -> kinegate.v1.DistanceInterval
 	12, // 3: kinegate.v1.DescribeDecayResponse.state:type_name -> kinegate.v1.ChannelState
 	13, // 4: kinegate.v1.DescribeDecayResponse.decay_class:type_name -> kinegate.v1.DecayClass
@@ -1098,6 +1131,10 @@ func file_kinegate_v1_decay_proto_init() {
 	file_kinegate_v1_dalitz_proto_init()
 	file_kinegate_v1_kinematics_proto_init()
 	file_kinegate_v1_reaction_proto_init()
+	file_kinegate_v1_decay_proto_msgTypes[0].OneofWrappers = []any{
+		(*DescribeDecayRequest_Decay)(nil),
+		(*DescribeDecayRequest_StructuredDecay)(nil),
+	}
 	file_kinegate_v1_decay_proto_msgTypes[1].OneofWrappers = []any{}
 	file_kinegate_v1_decay_proto_msgTypes[3].OneofWrappers = []any{}
 	file_kinegate_v1_decay_proto_msgTypes[4].OneofWrappers = []any{}

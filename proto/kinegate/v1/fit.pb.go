@@ -148,7 +148,7 @@ func (VertexTreatment) EnumDescriptor() ([]byte, []int) {
 type FitStatus int32
 
 const (
-	// No fit: the hypothesis has none.
+	// Not fitted: the hypothesis has no fit, or no assignment of it came as far.
 	FitStatus_FIT_STATUS_UNSPECIFIED FitStatus = 0
 	// The conditions of the minimum are met within 1e-9 standard deviations.
 	FitStatus_FIT_STATUS_CONVERGED FitStatus = 1

@@ -436,7 +436,8 @@ type DescribeReactionResponse struct {
 	StructuredReaction *Reaction `protobuf:"bytes,2,opt,name=structured_reaction,json=structuredReaction,proto3" json:"structured_reaction,omitempty"`
 	// State of the channel; unspecified where no initial state was given.
 	State ChannelState `protobuf:"varint,3,opt,name=state,proto3,enum=kinegate.v1.ChannelState" json:"state,omitempty"`
-	// Energy of the initial state; absent where no initial state was given.
+	// Energy and motion of the initial state. Absent where none was given, and for two
+	// photons in one direction, which have no rest frame.
 	CentreOfMass *CentreOfMass `protobuf:"bytes,4,opt,name=centre_of_mass,json=centreOfMass,proto3" json:"centre_of_mass,omitempty"`
 	// Threshold with the nominal masses of the products. Absent for a one-body
 	// product and for inclusive reactions whose lightest X is not known.

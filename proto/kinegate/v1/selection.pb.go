@@ -254,6 +254,60 @@ func (EntryDetail) EnumDescriptor() ([]byte, []int) {
 	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{3}
 }
 
+// DrainReason says why a server leaves a stream.
+type DrainReason int32
+
+const (
+	// Not said.
+	DrainReason_DRAIN_REASON_UNSPECIFIED DrainReason = 0
+	// The server itself is about to stop.
+	DrainReason_DRAIN_REASON_SERVER_STOPS DrainReason = 1
+	// The connection is as old as it may become, so that callers spread over the
+	// servers; the server stays and may be chosen again.
+	DrainReason_DRAIN_REASON_CONNECTION_AGE DrainReason = 2
+)
+
+// Enum value maps for DrainReason.
+var (
+	DrainReason_name = map[int32]string{
+		0: "DRAIN_REASON_UNSPECIFIED",
+		1: "DRAIN_REASON_SERVER_STOPS",
+		2: "DRAIN_REASON_CONNECTION_AGE",
+	}
+	DrainReason_value = map[string]int32{
+		"DRAIN_REASON_UNSPECIFIED":    0,
+		"DRAIN_REASON_SERVER_STOPS":   1,
+		"DRAIN_REASON_CONNECTION_AGE": 2,
+	}
+)
+
+func (x DrainReason) Enum() *DrainReason {
+	p := new(DrainReason)
+	*p = x
+	return p
+}
+
+func (x DrainReason) String() string {
+	return protoimpl.X.EnumStringOf(x.Descriptor(), protoreflect.EnumNumber(x))
+}
+
+func (DrainReason) Descriptor() protoreflect.EnumDescriptor {
+	return file_kinegate_v1_selection_proto_enumTypes[4].Descriptor()
+}
+
+func (DrainReason) Type() protoreflect.EnumType {
+	return &file_kinegate_v1_selection_proto_enumTypes[4]
+}
+
+func (x DrainReason) Number() protoreflect.EnumNumber {
+	return protoreflect.EnumNumber(x)
+}
+
+// Deprecated: Use DrainReason.Descriptor instead.
+func (DrainReason) EnumDescriptor() ([]byte, []int) {
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{4}
+}
+
 // Selection is a set of hypotheses that together take the gate decision.
 type Selection struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
@@ -835,13 +889,14 @@ func (x *TaggedBeam) GetSideBands() []*TimeWindow {
 	return nil
 }
 
-// TimeWindow is a half-open window on the time of a beam candidate.
+// TimeWindow is a half-open window [min, max) on the time of a beam candidate. A
+// limit that is absent does not cut.
 type TimeWindow struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
 	// Lower limit, included.
-	MinNs float64 `protobuf:"fixed64,1,opt,name=min_ns,json=minNs,proto3" json:"min_ns,omitempty"`
+	MinNs *float64 `protobuf:"fixed64,1,opt,name=min_ns,json=minNs,proto3,oneof" json:"min_ns,omitempty"`
 	// Upper limit, not included.
-	MaxNs float64 `protobuf:"fixed64,2,opt,name=max_ns,json=maxNs,proto3" json:"max_ns,omitempty"`
+	MaxNs *float64 `protobuf:"fixed64,2,opt,name=max_ns,json=maxNs,proto3,oneof" json:"max_ns,omitempty"`
 	// Weight of an entry with a candidate in this window; absent means 1.
 	Weight        *float64 `protobuf:"fixed64,3,opt,name=weight,proto3,oneof" json:"weight,omitempty"`
 	unknownFields protoimpl.UnknownFields
@@ -879,15 +934,15 @@ func (*TimeWindow) Descriptor() ([]byte, []int) {
 }
 
 func (x *TimeWindow) GetMinNs() float64 {
-	if x != nil {
-		return x.MinNs
+	if x != nil && x.MinNs != nil {
+		return *x.MinNs
 	}
 	return 0
 }
 
 func (x *TimeWindow) GetMaxNs() float64 {
-	if x != nil {
-		return x.MaxNs
+	if x != nil && x.MaxNs != nil {
+		return *x.MaxNs
 	}
 	return 0
 }
@@ -2852,8 +2907,8 @@ type CheckSelectionResponse struct {
 	SelectionDigest string `protobuf:"bytes,3,opt,name=selection_digest,json=selectionDigest,proto3" json:"selection_digest,omitempty"`
 	// The hypotheses as understood; empty where there are faults.
 	Hypotheses []*HypothesisOutline `protobuf:"bytes,4,rep,name=hypotheses,proto3" json:"hypotheses,omitempty"`
-	// Bound of an encoded verdict block with all entries, for the largest event
-	// block.
+	// Bound of an encoded reply with all entries, on the largest event block: the
+	// verdict block and the outline of the selection.
 	LargestReplyByteCount int64 `protobuf:"varint,5,opt,name=largest_reply_byte_count,json=largestReplyByteCount,proto3" json:"largest_reply_byte_count,omitempty"`
 	unknownFields         protoimpl.UnknownFields
 	sizeCache             protoimpl.SizeCache
@@ -2924,6 +2979,71 @@ func (x *CheckSelectionResponse) GetLargestReplyByteCount() int64 {
 	return 0
 }
 
+// SelectionOutline is how the selection that judges was understood: what the
+// columns of a verdict block of its digest mean.
+type SelectionOutline struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// Digest of the selection, in hexadecimal, as in its verdict blocks.
+	SelectionDigest string `protobuf:"bytes,1,opt,name=selection_digest,json=selectionDigest,proto3" json:"selection_digest,omitempty"`
+	// The hypotheses, in the order of a verdict block's.
+	Hypotheses []*HypothesisOutline `protobuf:"bytes,2,rep,name=hypotheses,proto3" json:"hypotheses,omitempty"`
+	// Names of the groups, in the order of a verdict block's.
+	Groups        []string `protobuf:"bytes,3,rep,name=groups,proto3" json:"groups,omitempty"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
+}
+
+func (x *SelectionOutline) Reset() {
+	*x = SelectionOutline{}
+	mi := &file_kinegate_v1_selection_proto_msgTypes[34]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *SelectionOutline) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*SelectionOutline) ProtoMessage() {}
+
+func (x *SelectionOutline) ProtoReflect() protoreflect.Message {
+	mi := &file_kinegate_v1_selection_proto_msgTypes[34]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use SelectionOutline.ProtoReflect.Descriptor instead.
+func (*SelectionOutline) Descriptor() ([]byte, []int) {
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{34}
+}
+
+func (x *SelectionOutline) GetSelectionDigest() string {
+	if x != nil {
+		return x.SelectionDigest
+	}
+	return ""
+}
+
+func (x *SelectionOutline) GetHypotheses() []*HypothesisOutline {
+	if x != nil {
+		return x.Hypotheses
+	}
+	return nil
+}
+
+func (x *SelectionOutline) GetGroups() []string {
+	if x != nil {
+		return x.Groups
+	}
+	return nil
+}
+
 // HypothesisOutline is how one hypothesis was understood.
 type HypothesisOutline struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
@@ -2944,7 +3064,7 @@ type HypothesisOutline struct {
 
 func (x *HypothesisOutline) Reset() {
 	*x = HypothesisOutline{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[34]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[35]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -2956,7 +3076,7 @@ func (x *HypothesisOutline) String() string {
 func (*HypothesisOutline) ProtoMessage() {}
 
 func (x *HypothesisOutline) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[34]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[35]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -2969,7 +3089,7 @@ func (x *HypothesisOutline) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use HypothesisOutline.ProtoReflect.Descriptor instead.
 func (*HypothesisOutline) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{34}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{35}
 }
 
 func (x *HypothesisOutline) GetName() string {
@@ -3022,7 +3142,7 @@ type JudgeBlockRequest struct {
 
 func (x *JudgeBlockRequest) Reset() {
 	*x = JudgeBlockRequest{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[35]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[36]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -3034,7 +3154,7 @@ func (x *JudgeBlockRequest) String() string {
 func (*JudgeBlockRequest) ProtoMessage() {}
 
 func (x *JudgeBlockRequest) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[35]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[36]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -3047,7 +3167,7 @@ func (x *JudgeBlockRequest) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use JudgeBlockRequest.ProtoReflect.Descriptor instead.
 func (*JudgeBlockRequest) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{35}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{36}
 }
 
 func (x *JudgeBlockRequest) GetSelection() *SelectionSource {
@@ -3075,14 +3195,16 @@ func (x *JudgeBlockRequest) GetBlock() *EventBlock {
 type JudgeBlockResponse struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
 	// The verdicts.
-	Verdict       *VerdictBlock `protobuf:"bytes,1,opt,name=verdict,proto3" json:"verdict,omitempty"`
+	Verdict *VerdictBlock `protobuf:"bytes,1,opt,name=verdict,proto3" json:"verdict,omitempty"`
+	// The selection that judged.
+	Selection     *SelectionOutline `protobuf:"bytes,2,opt,name=selection,proto3" json:"selection,omitempty"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
 }
 
 func (x *JudgeBlockResponse) Reset() {
 	*x = JudgeBlockResponse{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[36]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[37]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -3094,7 +3216,7 @@ func (x *JudgeBlockResponse) String() string {
 func (*JudgeBlockResponse) ProtoMessage() {}
 
 func (x *JudgeBlockResponse) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[36]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[37]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -3107,12 +3229,19 @@ func (x *JudgeBlockResponse) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use JudgeBlockResponse.ProtoReflect.Descriptor instead.
 func (*JudgeBlockResponse) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{36}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{37}
 }
 
 func (x *JudgeBlockResponse) GetVerdict() *VerdictBlock {
 	if x != nil {
 		return x.Verdict
+	}
+	return nil
+}
+
+func (x *JudgeBlockResponse) GetSelection() *SelectionOutline {
+	if x != nil {
+		return x.Selection
 	}
 	return nil
 }
@@ -3134,7 +3263,7 @@ type ExplainVerdictRequest struct {
 
 func (x *ExplainVerdictRequest) Reset() {
 	*x = ExplainVerdictRequest{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[37]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[38]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -3146,7 +3275,7 @@ func (x *ExplainVerdictRequest) String() string {
 func (*ExplainVerdictRequest) ProtoMessage() {}
 
 func (x *ExplainVerdictRequest) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[37]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[38]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -3159,7 +3288,7 @@ func (x *ExplainVerdictRequest) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use ExplainVerdictRequest.ProtoReflect.Descriptor instead.
 func (*ExplainVerdictRequest) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{37}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{38}
 }
 
 func (x *ExplainVerdictRequest) GetSelection() *SelectionSource {
@@ -3206,7 +3335,7 @@ type SelectionSource struct {
 
 func (x *SelectionSource) Reset() {
 	*x = SelectionSource{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[38]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[39]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -3218,7 +3347,7 @@ func (x *SelectionSource) String() string {
 func (*SelectionSource) ProtoMessage() {}
 
 func (x *SelectionSource) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[38]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[39]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -3231,7 +3360,7 @@ func (x *SelectionSource) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use SelectionSource.ProtoReflect.Descriptor instead.
 func (*SelectionSource) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{38}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{39}
 }
 
 func (x *SelectionSource) GetSource() isSelectionSource_Source {
@@ -3290,7 +3419,7 @@ type SelectionReference struct {
 
 func (x *SelectionReference) Reset() {
 	*x = SelectionReference{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[39]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[40]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -3302,7 +3431,7 @@ func (x *SelectionReference) String() string {
 func (*SelectionReference) ProtoMessage() {}
 
 func (x *SelectionReference) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[39]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[40]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -3315,7 +3444,7 @@ func (x *SelectionReference) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use SelectionReference.ProtoReflect.Descriptor instead.
 func (*SelectionReference) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{39}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{40}
 }
 
 func (x *SelectionReference) GetName() string {
@@ -3349,7 +3478,7 @@ type JudgeRequest struct {
 
 func (x *JudgeRequest) Reset() {
 	*x = JudgeRequest{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[40]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[41]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -3361,7 +3490,7 @@ func (x *JudgeRequest) String() string {
 func (*JudgeRequest) ProtoMessage() {}
 
 func (x *JudgeRequest) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[40]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[41]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -3374,7 +3503,7 @@ func (x *JudgeRequest) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use JudgeRequest.ProtoReflect.Descriptor instead.
 func (*JudgeRequest) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{40}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{41}
 }
 
 func (x *JudgeRequest) GetFrame() isJudgeRequest_Frame {
@@ -3447,6 +3576,7 @@ type JudgeResponse struct {
 	//	*JudgeResponse_Verdict
 	//	*JudgeResponse_Heartbeat
 	//	*JudgeResponse_Draining
+	//	*JudgeResponse_Taken
 	Frame         isJudgeResponse_Frame `protobuf_oneof:"frame"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
@@ -3454,7 +3584,7 @@ type JudgeResponse struct {
 
 func (x *JudgeResponse) Reset() {
 	*x = JudgeResponse{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[41]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[42]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -3466,7 +3596,7 @@ func (x *JudgeResponse) String() string {
 func (*JudgeResponse) ProtoMessage() {}
 
 func (x *JudgeResponse) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[41]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[42]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -3479,7 +3609,7 @@ func (x *JudgeResponse) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use JudgeResponse.ProtoReflect.Descriptor instead.
 func (*JudgeResponse) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{41}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{42}
 }
 
 func (x *JudgeResponse) GetFrame() isJudgeResponse_Frame {
@@ -3525,6 +3655,15 @@ func (x *JudgeResponse) GetDraining() *Draining {
 	return nil
 }
 
+func (x *JudgeResponse) GetTaken() *SelectionOutline {
+	if x != nil {
+		if x, ok := x.Frame.(*JudgeResponse_Taken); ok {
+			return x.Taken
+		}
+	}
+	return nil
+}
+
 type isJudgeResponse_Frame interface {
 	isJudgeResponse_Frame()
 }
@@ -3549,6 +3688,12 @@ type JudgeResponse_Draining struct {
 	Draining *Draining `protobuf:"bytes,4,opt,name=draining,proto3,oneof"`
 }
 
+type JudgeResponse_Taken struct {
+	// Where the opening said follow, the selection that judges the verdict blocks
+	// to come: sent before the first of another digest.
+	Taken *SelectionOutline `protobuf:"bytes,5,opt,name=taken,proto3,oneof"`
+}
+
 func (*JudgeResponse_Opened) isJudgeResponse_Frame() {}
 
 func (*JudgeResponse_Verdict) isJudgeResponse_Frame() {}
@@ -3556,6 +3701,8 @@ func (*JudgeResponse_Verdict) isJudgeResponse_Frame() {}
 func (*JudgeResponse_Heartbeat) isJudgeResponse_Frame() {}
 
 func (*JudgeResponse_Draining) isJudgeResponse_Frame() {}
+
+func (*JudgeResponse_Taken) isJudgeResponse_Frame() {}
 
 // JudgeOpen opens a judge stream.
 type JudgeOpen struct {
@@ -3570,13 +3717,15 @@ type JudgeOpen struct {
 	// Time from receipt of a block after which its events are EXPIRED rather
 	// than judged; absent means no limit. Not part of the digest.
 	LatencyBudgetS *float64 `protobuf:"fixed64,4,opt,name=latency_budget_s,json=latencyBudgetS,proto3,oneof" json:"latency_budget_s,omitempty"`
-	// Let a reloaded selection of the same name take over at a block boundary.
+	// Let a reloaded selection of the same name take over at a block boundary. Only
+	// with a selection that the server knows by name.
 	Follow bool `protobuf:"varint,5,opt,name=follow,proto3" json:"follow,omitempty"`
 	// Limits that the blocks to come will keep, where they are below the
 	// server's own; a member that is 0 means the server's. The largest possible
-	// reply follows from them, and an opening whose largest reply could pass the
-	// limit of the transport is refused: smaller blocks leave room for more
-	// entries. A block that breaks them is rejected.
+	// reply follows from them, and an opening whose largest reply could pass
+	// message_byte_count is refused: smaller blocks leave room for more entries.
+	// A block that breaks them is rejected, also for one event with more objects
+	// or candidates than was promised.
 	Limits        *Limits `protobuf:"bytes,6,opt,name=limits,proto3" json:"limits,omitempty"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
@@ -3584,7 +3733,7 @@ type JudgeOpen struct {
 
 func (x *JudgeOpen) Reset() {
 	*x = JudgeOpen{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[42]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[43]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -3596,7 +3745,7 @@ func (x *JudgeOpen) String() string {
 func (*JudgeOpen) ProtoMessage() {}
 
 func (x *JudgeOpen) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[42]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[43]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -3609,7 +3758,7 @@ func (x *JudgeOpen) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use JudgeOpen.ProtoReflect.Descriptor instead.
 func (*JudgeOpen) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{42}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{43}
 }
 
 func (x *JudgeOpen) GetSelection() *SelectionSource {
@@ -3657,21 +3806,19 @@ func (x *JudgeOpen) GetLimits() *Limits {
 // JudgeOpened is the server's answer to JudgeOpen.
 type JudgeOpened struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
-	// Digest of the selection that will judge, in hexadecimal.
-	SelectionDigest string `protobuf:"bytes,1,opt,name=selection_digest,json=selectionDigest,proto3" json:"selection_digest,omitempty"`
+	// The selection that will judge.
+	Selection *SelectionOutline `protobuf:"bytes,1,opt,name=selection,proto3" json:"selection,omitempty"`
 	// What the caller may have unanswered.
 	Credit *Credit `protobuf:"bytes,2,opt,name=credit,proto3" json:"credit,omitempty"`
 	// Limits of one block on this stream.
-	Limits *Limits `protobuf:"bytes,3,opt,name=limits,proto3" json:"limits,omitempty"`
-	// The hypotheses as understood.
-	Hypotheses    []*HypothesisOutline `protobuf:"bytes,4,rep,name=hypotheses,proto3" json:"hypotheses,omitempty"`
+	Limits        *Limits `protobuf:"bytes,3,opt,name=limits,proto3" json:"limits,omitempty"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
 }
 
 func (x *JudgeOpened) Reset() {
 	*x = JudgeOpened{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[43]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[44]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -3683,7 +3830,7 @@ func (x *JudgeOpened) String() string {
 func (*JudgeOpened) ProtoMessage() {}
 
 func (x *JudgeOpened) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[43]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[44]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -3696,14 +3843,14 @@ func (x *JudgeOpened) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use JudgeOpened.ProtoReflect.Descriptor instead.
 func (*JudgeOpened) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{43}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{44}
 }
 
-func (x *JudgeOpened) GetSelectionDigest() string {
+func (x *JudgeOpened) GetSelection() *SelectionOutline {
 	if x != nil {
-		return x.SelectionDigest
+		return x.Selection
 	}
-	return ""
+	return nil
 }
 
 func (x *JudgeOpened) GetCredit() *Credit {
@@ -3716,13 +3863,6 @@ func (x *JudgeOpened) GetCredit() *Credit {
 func (x *JudgeOpened) GetLimits() *Limits {
 	if x != nil {
 		return x.Limits
-	}
-	return nil
-}
-
-func (x *JudgeOpened) GetHypotheses() []*HypothesisOutline {
-	if x != nil {
-		return x.Hypotheses
 	}
 	return nil
 }
@@ -3741,7 +3881,7 @@ type Credit struct {
 
 func (x *Credit) Reset() {
 	*x = Credit{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[44]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[45]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -3753,7 +3893,7 @@ func (x *Credit) String() string {
 func (*Credit) ProtoMessage() {}
 
 func (x *Credit) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[44]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[45]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -3766,7 +3906,7 @@ func (x *Credit) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use Credit.ProtoReflect.Descriptor instead.
 func (*Credit) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{44}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{45}
 }
 
 func (x *Credit) GetBlockCount() int64 {
@@ -3783,7 +3923,10 @@ func (x *Credit) GetByteCount() int64 {
 	return 0
 }
 
-// Heartbeat shows that the sender is alive.
+// Heartbeat shows that the sender is alive: either side sends one after 1 s without
+// a frame of its own. A caller takes a server from which no frame came for 3 s for
+// dead, and resumes on a new connection. A server ends a stream on which no frame
+// came for its idle limit, 60 s by default, with the reason STREAM_IDLE.
 type Heartbeat struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
 	// Last sequence received: by the caller, of verdict blocks; by the server,
@@ -3799,7 +3942,7 @@ type Heartbeat struct {
 
 func (x *Heartbeat) Reset() {
 	*x = Heartbeat{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[45]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[46]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -3811,7 +3954,7 @@ func (x *Heartbeat) String() string {
 func (*Heartbeat) ProtoMessage() {}
 
 func (x *Heartbeat) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[45]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[46]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -3824,7 +3967,7 @@ func (x *Heartbeat) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use Heartbeat.ProtoReflect.Descriptor instead.
 func (*Heartbeat) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{45}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{46}
 }
 
 func (x *Heartbeat) GetReceivedSequence() int64 {
@@ -3848,21 +3991,23 @@ func (x *Heartbeat) GetOldestPendingS() float64 {
 	return 0
 }
 
-// Draining says that the server will leave. It answers every block it has
-// read, reads no more, and ends the stream; the caller then opens a new one.
+// Draining says that the server will leave the stream. It answers every block it
+// has read, reads no more, and ends the stream; the caller then opens a new one.
 type Draining struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
 	// Last sequence answered when this was sent.
 	AnsweredSequence int64 `protobuf:"varint,1,opt,name=answered_sequence,json=answeredSequence,proto3" json:"answered_sequence,omitempty"`
 	// Time until the server ends the stream.
-	GraceS        float64 `protobuf:"fixed64,2,opt,name=grace_s,json=graceS,proto3" json:"grace_s,omitempty"`
+	GraceS float64 `protobuf:"fixed64,2,opt,name=grace_s,json=graceS,proto3" json:"grace_s,omitempty"`
+	// Why.
+	Reason        DrainReason `protobuf:"varint,3,opt,name=reason,proto3,enum=kinegate.v1.DrainReason" json:"reason,omitempty"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
 }
 
 func (x *Draining) Reset() {
 	*x = Draining{}
-	mi := &file_kinegate_v1_selection_proto_msgTypes[46]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[47]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -3874,7 +4019,7 @@ func (x *Draining) String() string {
 func (*Draining) ProtoMessage() {}
 
 func (x *Draining) ProtoReflect() protoreflect.Message {
-	mi := &file_kinegate_v1_selection_proto_msgTypes[46]
+	mi := &file_kinegate_v1_selection_proto_msgTypes[47]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -3887,7 +4032,7 @@ func (x *Draining) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use Draining.ProtoReflect.Descriptor instead.
 func (*Draining) Descriptor() ([]byte, []int) {
-	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{46}
+	return file_kinegate_v1_selection_proto_rawDescGZIP(), []int{47}
 }
 
 func (x *Draining) GetAnsweredSequence() int64 {
@@ -3902,6 +4047,13 @@ func (x *Draining) GetGraceS() float64 {
 		return x.GraceS
 	}
 	return 0
+}
+
+func (x *Draining) GetReason() DrainReason {
+	if x != nil {
+		return x.Reason
+	}
+	return DrainReason_DRAIN_REASON_UNSPECIFIED
 }
 
 var File_kinegate_v1_selection_proto protoreflect.FileDescriptor
@@ -3955,12 +4107,14 @@ const file_kinegate_v1_selection_proto_rawDesc = "" +
 	"TaggedBeam\x12/\n" +
 	"\x06prompt\x18\x01 \x01(\v2\x17.kinegate.v1.TimeWindowR\x06prompt\x126\n" +
 	"\n" +
-	"side_bands\x18\x02 \x03(\v2\x17.kinegate.v1.TimeWindowR\tsideBands\"b\n" +
+	"side_bands\x18\x02 \x03(\v2\x17.kinegate.v1.TimeWindowR\tsideBands\"\x82\x01\n" +
 	"\n" +
-	"TimeWindow\x12\x15\n" +
-	"\x06min_ns\x18\x01 \x01(\x01R\x05minNs\x12\x15\n" +
-	"\x06max_ns\x18\x02 \x01(\x01R\x05maxNs\x12\x1b\n" +
-	"\x06weight\x18\x03 \x01(\x01H\x00R\x06weight\x88\x01\x01B\t\n" +
+	"TimeWindow\x12\x1a\n" +
+	"\x06min_ns\x18\x01 \x01(\x01H\x00R\x05minNs\x88\x01\x01\x12\x1a\n" +
+	"\x06max_ns\x18\x02 \x01(\x01H\x01R\x05maxNs\x88\x01\x01\x12\x1b\n" +
+	"\x06weight\x18\x03 \x01(\x01H\x02R\x06weight\x88\x01\x01B\t\n" +
+	"\a_min_nsB\t\n" +
+	"\a_max_nsB\t\n" +
 	"\a_weight\"\xba\x01\n" +
 	"\fExtraObjects\x121\n" +
 	"\x04none\x18\x01 \x01(\v2\x1b.kinegate.v1.NoExtraObjectsH\x00R\x04none\x12=\n" +
@@ -4129,7 +4283,13 @@ const file_kinegate_v1_selection_proto_rawDesc = "" +
 	"\n" +
 	"hypotheses\x18\x04 \x03(\v2\x1e.kinegate.v1.HypothesisOutlineR\n" +
 	"hypotheses\x127\n" +
-	"\x18largest_reply_byte_count\x18\x05 \x01(\x03R\x15largestReplyByteCount\"\xcb\x01\n" +
+	"\x18largest_reply_byte_count\x18\x05 \x01(\x03R\x15largestReplyByteCount\"\x95\x01\n" +
+	"\x10SelectionOutline\x12)\n" +
+	"\x10selection_digest\x18\x01 \x01(\tR\x0fselectionDigest\x12>\n" +
+	"\n" +
+	"hypotheses\x18\x02 \x03(\v2\x1e.kinegate.v1.HypothesisOutlineR\n" +
+	"hypotheses\x12\x16\n" +
+	"\x06groups\x18\x03 \x03(\tR\x06groups\"\xcb\x01\n" +
 	"\x11HypothesisOutline\x12\x12\n" +
 	"\x04name\x18\x01 \x01(\tR\x04name\x12\x1a\n" +
 	"\breaction\x18\x02 \x01(\tR\breaction\x12\x1a\n" +
@@ -4140,9 +4300,10 @@ const file_kinegate_v1_selection_proto_rawDesc = "" +
 	"\x11JudgeBlockRequest\x12:\n" +
 	"\tselection\x18\x01 \x01(\v2\x1c.kinegate.v1.SelectionSourceR\tselection\x122\n" +
 	"\aentries\x18\x02 \x01(\x0e2\x18.kinegate.v1.EntryDetailR\aentries\x12-\n" +
-	"\x05block\x18\x03 \x01(\v2\x17.kinegate.v1.EventBlockR\x05block\"I\n" +
+	"\x05block\x18\x03 \x01(\v2\x17.kinegate.v1.EventBlockR\x05block\"\x86\x01\n" +
 	"\x12JudgeBlockResponse\x123\n" +
-	"\averdict\x18\x01 \x01(\v2\x19.kinegate.v1.VerdictBlockR\averdict\"\xd5\x01\n" +
+	"\averdict\x18\x01 \x01(\v2\x19.kinegate.v1.VerdictBlockR\averdict\x12;\n" +
+	"\tselection\x18\x02 \x01(\v2\x1d.kinegate.v1.SelectionOutlineR\tselection\"\xd5\x01\n" +
 	"\x15ExplainVerdictRequest\x12:\n" +
 	"\tselection\x18\x01 \x01(\v2\x1c.kinegate.v1.SelectionSourceR\tselection\x12-\n" +
 	"\x05block\x18\x02 \x01(\v2\x17.kinegate.v1.EventBlockR\x05block\x12\x1f\n" +
@@ -4160,12 +4321,13 @@ const file_kinegate_v1_selection_proto_rawDesc = "" +
 	"\x04open\x18\x01 \x01(\v2\x16.kinegate.v1.JudgeOpenH\x00R\x04open\x12/\n" +
 	"\x05block\x18\x02 \x01(\v2\x17.kinegate.v1.EventBlockH\x00R\x05block\x126\n" +
 	"\theartbeat\x18\x03 \x01(\v2\x16.kinegate.v1.HeartbeatH\x00R\theartbeatB\a\n" +
-	"\x05frame\"\xf0\x01\n" +
+	"\x05frame\"\xa7\x02\n" +
 	"\rJudgeResponse\x122\n" +
 	"\x06opened\x18\x01 \x01(\v2\x18.kinegate.v1.JudgeOpenedH\x00R\x06opened\x125\n" +
 	"\averdict\x18\x02 \x01(\v2\x19.kinegate.v1.VerdictBlockH\x00R\averdict\x126\n" +
 	"\theartbeat\x18\x03 \x01(\v2\x16.kinegate.v1.HeartbeatH\x00R\theartbeat\x123\n" +
-	"\bdraining\x18\x04 \x01(\v2\x15.kinegate.v1.DrainingH\x00R\bdrainingB\a\n" +
+	"\bdraining\x18\x04 \x01(\v2\x15.kinegate.v1.DrainingH\x00R\bdraining\x125\n" +
+	"\x05taken\x18\x05 \x01(\v2\x1d.kinegate.v1.SelectionOutlineH\x00R\x05takenB\a\n" +
 	"\x05frame\"\xab\x02\n" +
 	"\tJudgeOpen\x12:\n" +
 	"\tselection\x18\x01 \x01(\v2\x1c.kinegate.v1.SelectionSourceR\tselection\x12%\n" +
@@ -4174,14 +4336,11 @@ const file_kinegate_v1_selection_proto_rawDesc = "" +
 	"\x10latency_budget_s\x18\x04 \x01(\x01H\x00R\x0elatencyBudgetS\x88\x01\x01\x12\x16\n" +
 	"\x06follow\x18\x05 \x01(\bR\x06follow\x12+\n" +
 	"\x06limits\x18\x06 \x01(\v2\x13.kinegate.v1.LimitsR\x06limitsB\x13\n" +
-	"\x11_latency_budget_s\"\xd2\x01\n" +
-	"\vJudgeOpened\x12)\n" +
-	"\x10selection_digest\x18\x01 \x01(\tR\x0fselectionDigest\x12+\n" +
+	"\x11_latency_budget_s\"\xa4\x01\n" +
+	"\vJudgeOpened\x12;\n" +
+	"\tselection\x18\x01 \x01(\v2\x1d.kinegate.v1.SelectionOutlineR\tselection\x12+\n" +
 	"\x06credit\x18\x02 \x01(\v2\x13.kinegate.v1.CreditR\x06credit\x12+\n" +
-	"\x06limits\x18\x03 \x01(\v2\x13.kinegate.v1.LimitsR\x06limits\x12>\n" +
-	"\n" +
-	"hypotheses\x18\x04 \x03(\v2\x1e.kinegate.v1.HypothesisOutlineR\n" +
-	"hypotheses\"H\n" +
+	"\x06limits\x18\x03 \x01(\v2\x13.kinegate.v1.LimitsR\x06limits\"H\n" +
 	"\x06Credit\x12\x1f\n" +
 	"\vblock_count\x18\x01 \x01(\x03R\n" +
 	"blockCount\x12\x1d\n" +
@@ -4190,10 +4349,11 @@ const file_kinegate_v1_selection_proto_rawDesc = "" +
 	"\tHeartbeat\x12+\n" +
 	"\x11received_sequence\x18\x01 \x01(\x03R\x10receivedSequence\x12+\n" +
 	"\x11answered_sequence\x18\x02 \x01(\x03R\x10answeredSequence\x12(\n" +
-	"\x10oldest_pending_s\x18\x03 \x01(\x01R\x0eoldestPendingS\"P\n" +
+	"\x10oldest_pending_s\x18\x03 \x01(\x01R\x0eoldestPendingS\"\x82\x01\n" +
 	"\bDraining\x12+\n" +
 	"\x11answered_sequence\x18\x01 \x01(\x03R\x10answeredSequence\x12\x17\n" +
-	"\agrace_s\x18\x02 \x01(\x01R\x06graceS*K\n" +
+	"\agrace_s\x18\x02 \x01(\x01R\x06graceS\x120\n" +
+	"\x06reason\x18\x03 \x01(\x0e2\x18.kinegate.v1.DrainReasonR\x06reason*K\n" +
 	"\x04Role\x12\x14\n" +
 	"\x10ROLE_UNSPECIFIED\x10\x00\x12\r\n" +
 	"\tROLE_GATE\x10\x01\x12\x0f\n" +
@@ -4212,7 +4372,11 @@ const file_kinegate_v1_selection_proto_rawDesc = "" +
 	"\x18ENTRY_DETAIL_UNSPECIFIED\x10\x00\x12\x15\n" +
 	"\x11ENTRY_DETAIL_NONE\x10\x01\x12\x19\n" +
 	"\x15ENTRY_DETAIL_ACCEPTED\x10\x02\x12\x14\n" +
-	"\x10ENTRY_DETAIL_ALL\x10\x032\xdb\x02\n" +
+	"\x10ENTRY_DETAIL_ALL\x10\x03*k\n" +
+	"\vDrainReason\x12\x1c\n" +
+	"\x18DRAIN_REASON_UNSPECIFIED\x10\x00\x12\x1d\n" +
+	"\x19DRAIN_REASON_SERVER_STOPS\x10\x01\x12\x1f\n" +
+	"\x1bDRAIN_REASON_CONNECTION_AGE\x10\x022\xdb\x02\n" +
 	"\x10SelectionService\x12Y\n" +
 	"\x0eCheckSelection\x12\".kinegate.v1.CheckSelectionRequest\x1a#.kinegate.v1.CheckSelectionResponse\x12M\n" +
 	"\n" +
@@ -4232,159 +4396,165 @@ func file_kinegate_v1_selection_proto_rawDescGZIP() []byte {
 	return file_kinegate_v1_selection_proto_rawDescData
 }
 
-var file_kinegate_v1_selection_proto_enumTypes = make([]protoimpl.EnumInfo, 4)
-var file_kinegate_v1_selection_proto_msgTypes = make([]protoimpl.MessageInfo, 47)
+var file_kinegate_v1_selection_proto_enumTypes = make([]protoimpl.EnumInfo, 5)
+var file_kinegate_v1_selection_proto_msgTypes = make([]protoimpl.MessageInfo, 48)
 var file_kinegate_v1_selection_proto_goTypes = []any{
 	(Role)(0),                        // 0: kinegate.v1.Role
 	(Measurement)(0),                 // 1: kinegate.v1.Measurement
 	(Frame)(0),                       // 2: kinegate.v1.Frame
 	(EntryDetail)(0),                 // 3: kinegate.v1.EntryDetail
-	(*Selection)(nil),                // 4: kinegate.v1.Selection
-	(*Hypothesis)(nil),               // 5: kinegate.v1.Hypothesis
-	(*Group)(nil),                    // 6: kinegate.v1.Group
-	(*ProductMeasurement)(nil),       // 7: kinegate.v1.ProductMeasurement
-	(*MergedPhotons)(nil),            // 8: kinegate.v1.MergedPhotons
-	(*BeamSource)(nil),               // 9: kinegate.v1.BeamSource
-	(*TaggedBeam)(nil),               // 10: kinegate.v1.TaggedBeam
-	(*TimeWindow)(nil),               // 11: kinegate.v1.TimeWindow
-	(*ExtraObjects)(nil),             // 12: kinegate.v1.ExtraObjects
-	(*NoExtraObjects)(nil),           // 13: kinegate.v1.NoExtraObjects
-	(*AnyExtraObjects)(nil),          // 14: kinegate.v1.AnyExtraObjects
-	(*SoftPhotons)(nil),              // 15: kinegate.v1.SoftPhotons
-	(*Condition)(nil),                // 16: kinegate.v1.Condition
-	(*Window)(nil),                   // 17: kinegate.v1.Window
-	(*MassWindow)(nil),               // 18: kinegate.v1.MassWindow
-	(*MassSquaredWindow)(nil),        // 19: kinegate.v1.MassSquaredWindow
-	(*EnergyWindow)(nil),             // 20: kinegate.v1.EnergyWindow
-	(*AngleWindow)(nil),              // 21: kinegate.v1.AngleWindow
-	(*OpeningAngleWindow)(nil),       // 22: kinegate.v1.OpeningAngleWindow
-	(*CoplanarityWindow)(nil),        // 23: kinegate.v1.CoplanarityWindow
-	(*MissingDirectionWindow)(nil),   // 24: kinegate.v1.MissingDirectionWindow
-	(*MomentumTransferWindow)(nil),   // 25: kinegate.v1.MomentumTransferWindow
-	(*TimeDifferenceWindow)(nil),     // 26: kinegate.v1.TimeDifferenceWindow
-	(*UnusedPhotonEnergyWindow)(nil), // 27: kinegate.v1.UnusedPhotonEnergyWindow
-	(*VertexZWindow)(nil),            // 28: kinegate.v1.VertexZWindow
-	(*FlightDistanceWindow)(nil),     // 29: kinegate.v1.FlightDistanceWindow
-	(*PointingWindow)(nil),           // 30: kinegate.v1.PointingWindow
-	(*FitProbabilityWindow)(nil),     // 31: kinegate.v1.FitProbabilityWindow
-	(*Ranking)(nil),                  // 32: kinegate.v1.Ranking
-	(*RankByFitProbability)(nil),     // 33: kinegate.v1.RankByFitProbability
-	(*ClosestMasses)(nil),            // 34: kinegate.v1.ClosestMasses
-	(*MassReference)(nil),            // 35: kinegate.v1.MassReference
-	(*CheckSelectionRequest)(nil),    // 36: kinegate.v1.CheckSelectionRequest
-	(*CheckSelectionResponse)(nil),   // 37: kinegate.v1.CheckSelectionResponse
-	(*HypothesisOutline)(nil),        // 38: kinegate.v1.HypothesisOutline
-	(*JudgeBlockRequest)(nil),        // 39: kinegate.v1.JudgeBlockRequest
-	(*JudgeBlockResponse)(nil),       // 40: kinegate.v1.JudgeBlockResponse
-	(*ExplainVerdictRequest)(nil),    // 41: kinegate.v1.ExplainVerdictRequest
-	(*SelectionSource)(nil),          // 42: kinegate.v1.SelectionSource
-	(*SelectionReference)(nil),       // 43: kinegate.v1.SelectionReference
-	(*JudgeRequest)(nil),             // 44: kinegate.v1.JudgeRequest
-	(*JudgeResponse)(nil),            // 45: kinegate.v1.JudgeResponse
-	(*JudgeOpen)(nil),                // 46: kinegate.v1.JudgeOpen
-	(*JudgeOpened)(nil),              // 47: kinegate.v1.JudgeOpened
-	(*Credit)(nil),                   // 48: kinegate.v1.Credit
-	(*Heartbeat)(nil),                // 49: kinegate.v1.Heartbeat
-	(*Draining)(nil),                 // 50: kinegate.v1.Draining
-	(*Reaction)(nil),                 // 51: kinegate.v1.Reaction
-	(*Fit)(nil),                      // 52: kinegate.v1.Fit
-	(*InitialState)(nil),             // 53: kinegate.v1.InitialState
-	(InitialParticle)(0),             // 54: kinegate.v1.InitialParticle
-	(*FieldFault)(nil),               // 55: kinegate.v1.FieldFault
-	(*EventBlock)(nil),               // 56: kinegate.v1.EventBlock
-	(*VerdictBlock)(nil),             // 57: kinegate.v1.VerdictBlock
-	(*Limits)(nil),                   // 58: kinegate.v1.Limits
-	(*ExplainVerdictResponse)(nil),   // 59: kinegate.v1.ExplainVerdictResponse
+	(DrainReason)(0),                 // 4: kinegate.v1.DrainReason
+	(*Selection)(nil),                // 5: kinegate.v1.Selection
+	(*Hypothesis)(nil),               // 6: kinegate.v1.Hypothesis
+	(*Group)(nil),                    // 7: kinegate.v1.Group
+	(*ProductMeasurement)(nil),       // 8: kinegate.v1.ProductMeasurement
+	(*MergedPhotons)(nil),            // 9: kinegate.v1.MergedPhotons
+	(*BeamSource)(nil),               // 10: kinegate.v1.BeamSource
+	(*TaggedBeam)(nil),               // 11: kinegate.v1.TaggedBeam
+	(*TimeWindow)(nil),               // 12: kinegate.v1.TimeWindow
+	(*ExtraObjects)(nil),             // 13: kinegate.v1.ExtraObjects
+	(*NoExtraObjects)(nil),           // 14: kinegate.v1.NoExtraObjects
+	(*AnyExtraObjects)(nil),          // 15: kinegate.v1.AnyExtraObjects
+	(*SoftPhotons)(nil),              // 16: kinegate.v1.SoftPhotons
+	(*Condition)(nil),                // 17: kinegate.v1.Condition
+	(*Window)(nil),                   // 18: kinegate.v1.Window
+	(*MassWindow)(nil),               // 19: kinegate.v1.MassWindow
+	(*MassSquaredWindow)(nil),        // 20: kinegate.v1.MassSquaredWindow
+	(*EnergyWindow)(nil),             // 21: kinegate.v1.EnergyWindow
+	(*AngleWindow)(nil),              // 22: kinegate.v1.AngleWindow
+	(*OpeningAngleWindow)(nil),       // 23: kinegate.v1.OpeningAngleWindow
+	(*CoplanarityWindow)(nil),        // 24: kinegate.v1.CoplanarityWindow
+	(*MissingDirectionWindow)(nil),   // 25: kinegate.v1.MissingDirectionWindow
+	(*MomentumTransferWindow)(nil),   // 26: kinegate.v1.MomentumTransferWindow
+	(*TimeDifferenceWindow)(nil),     // 27: kinegate.v1.TimeDifferenceWindow
+	(*UnusedPhotonEnergyWindow)(nil), // 28: kinegate.v1.UnusedPhotonEnergyWindow
+	(*VertexZWindow)(nil),            // 29: kinegate.v1.VertexZWindow
+	(*FlightDistanceWindow)(nil),     // 30: kinegate.v1.FlightDistanceWindow
+	(*PointingWindow)(nil),           // 31: kinegate.v1.PointingWindow
+	(*FitProbabilityWindow)(nil),     // 32: kinegate.v1.FitProbabilityWindow
+	(*Ranking)(nil),                  // 33: kinegate.v1.Ranking
+	(*RankByFitProbability)(nil),     // 34: kinegate.v1.RankByFitProbability
+	(*ClosestMasses)(nil),            // 35: kinegate.v1.ClosestMasses
+	(*MassReference)(nil),            // 36: kinegate.v1.MassReference
+	(*CheckSelectionRequest)(nil),    // 37: kinegate.v1.CheckSelectionRequest
+	(*CheckSelectionResponse)(nil),   // 38: kinegate.v1.CheckSelectionResponse
+	(*SelectionOutline)(nil),         // 39: kinegate.v1.SelectionOutline
+	(*HypothesisOutline)(nil),        // 40: kinegate.v1.HypothesisOutline
+	(*JudgeBlockRequest)(nil),        // 41: kinegate.v1.JudgeBlockRequest
+	(*JudgeBlockResponse)(nil),       // 42: kinegate.v1.JudgeBlockResponse
+	(*ExplainVerdictRequest)(nil),    // 43: kinegate.v1.ExplainVerdictRequest
+	(*SelectionSource)(nil),          // 44: kinegate.v1.SelectionSource
+	(*SelectionReference)(nil),       // 45: kinegate.v1.SelectionReference
+	(*JudgeRequest)(nil),             // 46: kinegate.v1.JudgeRequest
+	(*JudgeResponse)(nil),            // 47: kinegate.v1.JudgeResponse
+	(*JudgeOpen)(nil),                // 48: kinegate.v1.JudgeOpen
+	(*JudgeOpened)(nil),              // 49: kinegate.v1.JudgeOpened
+	(*Credit)(nil),                   // 50: kinegate.v1.Credit
+	(*Heartbeat)(nil),                // 51: kinegate.v1.Heartbeat
+	(*Draining)(nil),                 // 52: kinegate.v1.Draining
+	(*Reaction)(nil),                 // 53: kinegate.v1.Reaction
+	(*Fit)(nil),                      // 54: kinegate.v1.Fit
+	(*InitialState)(nil),             // 55: kinegate.v1.InitialState
+	(InitialParticle)(0),             // 56: kinegate.v1.InitialParticle
+	(*FieldFault)(nil),               // 57: kinegate.v1.FieldFault
+	(*EventBlock)(nil),               // 58: kinegate.v1.EventBlock
+	(*VerdictBlock)(nil),             // 59: kinegate.v1.VerdictBlock
+	(*Limits)(nil),                   // 60: kinegate.v1.Limits
+	(*ExplainVerdictResponse)(nil),   // 61: kinegate.v1.ExplainVerdictResponse
 }
 var file_kinegate_v1_selection_proto_depIdxs = []int32{
-	5,  // 0: kinegate.v1.Selection.hypotheses:type_name -> kinegate.v1.Hypothesis
-	6,  // 1: kinegate.v1.Selection.groups:type_name -> kinegate.v1.Group
-	51, // 2: kinegate.v1.Hypothesis.structured_reaction:type_name -> kinegate.v1.Reaction
-	7,  // 3: kinegate.v1.Hypothesis.measurements:type_name -> kinegate.v1.ProductMeasurement
-	9,  // 4: kinegate.v1.Hypothesis.beam:type_name -> kinegate.v1.BeamSource
-	12, // 5: kinegate.v1.Hypothesis.extra_objects:type_name -> kinegate.v1.ExtraObjects
-	16, // 6: kinegate.v1.Hypothesis.condition:type_name -> kinegate.v1.Condition
-	32, // 7: kinegate.v1.Hypothesis.ranking:type_name -> kinegate.v1.Ranking
-	17, // 8: kinegate.v1.Hypothesis.record:type_name -> kinegate.v1.Window
+	6,  // 0: kinegate.v1.Selection.hypotheses:type_name -> kinegate.v1.Hypothesis
+	7,  // 1: kinegate.v1.Selection.groups:type_name -> kinegate.v1.Group
+	53, // 2: kinegate.v1.Hypothesis.structured_reaction:type_name -> kinegate.v1.Reaction
+	8,  // 3: kinegate.v1.Hypothesis.measurements:type_name -> kinegate.v1.ProductMeasurement
+	10, // 4: kinegate.v1.Hypothesis.beam:type_name -> kinegate.v1.BeamSource
+	13, // 5: kinegate.v1.Hypothesis.extra_objects:type_name -> kinegate.v1.ExtraObjects
+	17, // 6: kinegate.v1.Hypothesis.condition:type_name -> kinegate.v1.Condition
+	33, // 7: kinegate.v1.Hypothesis.ranking:type_name -> kinegate.v1.Ranking
+	18, // 8: kinegate.v1.Hypothesis.record:type_name -> kinegate.v1.Window
 	0,  // 9: kinegate.v1.Hypothesis.role:type_name -> kinegate.v1.Role
-	52, // 10: kinegate.v1.Hypothesis.fit:type_name -> kinegate.v1.Fit
+	54, // 10: kinegate.v1.Hypothesis.fit:type_name -> kinegate.v1.Fit
 	1,  // 11: kinegate.v1.ProductMeasurement.measurement:type_name -> kinegate.v1.Measurement
-	8,  // 12: kinegate.v1.ProductMeasurement.merged_photons:type_name -> kinegate.v1.MergedPhotons
-	10, // 13: kinegate.v1.BeamSource.tagged:type_name -> kinegate.v1.TaggedBeam
-	53, // 14: kinegate.v1.BeamSource.fixed:type_name -> kinegate.v1.InitialState
-	11, // 15: kinegate.v1.TaggedBeam.prompt:type_name -> kinegate.v1.TimeWindow
-	11, // 16: kinegate.v1.TaggedBeam.side_bands:type_name -> kinegate.v1.TimeWindow
-	13, // 17: kinegate.v1.ExtraObjects.none:type_name -> kinegate.v1.NoExtraObjects
-	15, // 18: kinegate.v1.ExtraObjects.soft_photons:type_name -> kinegate.v1.SoftPhotons
-	14, // 19: kinegate.v1.ExtraObjects.any:type_name -> kinegate.v1.AnyExtraObjects
-	17, // 20: kinegate.v1.Condition.window:type_name -> kinegate.v1.Window
-	16, // 21: kinegate.v1.Condition.all_of:type_name -> kinegate.v1.Condition
-	16, // 22: kinegate.v1.Condition.any_of:type_name -> kinegate.v1.Condition
-	16, // 23: kinegate.v1.Condition.none_of:type_name -> kinegate.v1.Condition
-	18, // 24: kinegate.v1.Window.invariant_mass:type_name -> kinegate.v1.MassWindow
-	19, // 25: kinegate.v1.Window.invariant_mass_squared:type_name -> kinegate.v1.MassSquaredWindow
-	18, // 26: kinegate.v1.Window.missing_mass:type_name -> kinegate.v1.MassWindow
-	19, // 27: kinegate.v1.Window.missing_mass_squared:type_name -> kinegate.v1.MassSquaredWindow
-	20, // 28: kinegate.v1.Window.energy:type_name -> kinegate.v1.EnergyWindow
-	20, // 29: kinegate.v1.Window.momentum:type_name -> kinegate.v1.EnergyWindow
-	20, // 30: kinegate.v1.Window.transverse_momentum:type_name -> kinegate.v1.EnergyWindow
-	21, // 31: kinegate.v1.Window.angle:type_name -> kinegate.v1.AngleWindow
-	22, // 32: kinegate.v1.Window.opening_angle:type_name -> kinegate.v1.OpeningAngleWindow
-	23, // 33: kinegate.v1.Window.coplanarity:type_name -> kinegate.v1.CoplanarityWindow
-	24, // 34: kinegate.v1.Window.missing_direction:type_name -> kinegate.v1.MissingDirectionWindow
-	25, // 35: kinegate.v1.Window.momentum_transfer:type_name -> kinegate.v1.MomentumTransferWindow
-	25, // 36: kinegate.v1.Window.momentum_transfer_prime:type_name -> kinegate.v1.MomentumTransferWindow
-	26, // 37: kinegate.v1.Window.time_difference:type_name -> kinegate.v1.TimeDifferenceWindow
-	27, // 38: kinegate.v1.Window.unused_photon_energy:type_name -> kinegate.v1.UnusedPhotonEnergyWindow
-	28, // 39: kinegate.v1.Window.vertex_z:type_name -> kinegate.v1.VertexZWindow
-	29, // 40: kinegate.v1.Window.flight_distance:type_name -> kinegate.v1.FlightDistanceWindow
-	30, // 41: kinegate.v1.Window.pointing:type_name -> kinegate.v1.PointingWindow
-	31, // 42: kinegate.v1.Window.fit_probability:type_name -> kinegate.v1.FitProbabilityWindow
+	9,  // 12: kinegate.v1.ProductMeasurement.merged_photons:type_name -> kinegate.v1.MergedPhotons
+	11, // 13: kinegate.v1.BeamSource.tagged:type_name -> kinegate.v1.TaggedBeam
+	55, // 14: kinegate.v1.BeamSource.fixed:type_name -> kinegate.v1.InitialState
+	12, // 15: kinegate.v1.TaggedBeam.prompt:type_name -> kinegate.v1.TimeWindow
+	12, // 16: kinegate.v1.TaggedBeam.side_bands:type_name -> kinegate.v1.TimeWindow
+	14, // 17: kinegate.v1.ExtraObjects.none:type_name -> kinegate.v1.NoExtraObjects
+	16, // 18: kinegate.v1.ExtraObjects.soft_photons:type_name -> kinegate.v1.SoftPhotons
+	15, // 19: kinegate.v1.ExtraObjects.any:type_name -> kinegate.v1.AnyExtraObjects
+	18, // 20: kinegate.v1.Condition.window:type_name -> kinegate.v1.Window
+	17, // 21: kinegate.v1.Condition.all_of:type_name -> kinegate.v1.Condition
+	17, // 22: kinegate.v1.Condition.any_of:type_name -> kinegate.v1.Condition
+	17, // 23: kinegate.v1.Condition.none_of:type_name -> kinegate.v1.Condition
+	19, // 24: kinegate.v1.Window.invariant_mass:type_name -> kinegate.v1.MassWindow
+	20, // 25: kinegate.v1.Window.invariant_mass_squared:type_name -> kinegate.v1.MassSquaredWindow
+	19, // 26: kinegate.v1.Window.missing_mass:type_name -> kinegate.v1.MassWindow
+	20, // 27: kinegate.v1.Window.missing_mass_squared:type_name -> kinegate.v1.MassSquaredWindow
+	21, // 28: kinegate.v1.Window.energy:type_name -> kinegate.v1.EnergyWindow
+	21, // 29: kinegate.v1.Window.momentum:type_name -> kinegate.v1.EnergyWindow
+	21, // 30: kinegate.v1.Window.transverse_momentum:type_name -> kinegate.v1.EnergyWindow
+	22, // 31: kinegate.v1.Window.angle:type_name -> kinegate.v1.AngleWindow
+	23, // 32: kinegate.v1.Window.opening_angle:type_name -> kinegate.v1.OpeningAngleWindow
+	24, // 33: kinegate.v1.Window.coplanarity:type_name -> kinegate.v1.CoplanarityWindow
+	25, // 34: kinegate.v1.Window.missing_direction:type_name -> kinegate.v1.MissingDirectionWindow
+	26, // 35: kinegate.v1.Window.momentum_transfer:type_name -> kinegate.v1.MomentumTransferWindow
+	26, // 36: kinegate.v1.Window.momentum_transfer_prime:type_name -> kinegate.v1.MomentumTransferWindow
+	27, // 37: kinegate.v1.Window.time_difference:type_name -> kinegate.v1.TimeDifferenceWindow
+	28, // 38: kinegate.v1.Window.unused_photon_energy:type_name -> kinegate.v1.UnusedPhotonEnergyWindow
+	29, // 39: kinegate.v1.Window.vertex_z:type_name -> kinegate.v1.VertexZWindow
+	30, // 40: kinegate.v1.Window.flight_distance:type_name -> kinegate.v1.FlightDistanceWindow
+	31, // 41: kinegate.v1.Window.pointing:type_name -> kinegate.v1.PointingWindow
+	32, // 42: kinegate.v1.Window.fit_probability:type_name -> kinegate.v1.FitProbabilityWindow
 	2,  // 43: kinegate.v1.EnergyWindow.frame:type_name -> kinegate.v1.Frame
 	2,  // 44: kinegate.v1.AngleWindow.frame:type_name -> kinegate.v1.Frame
 	2,  // 45: kinegate.v1.OpeningAngleWindow.frame:type_name -> kinegate.v1.Frame
-	54, // 46: kinegate.v1.MomentumTransferWindow.initial:type_name -> kinegate.v1.InitialParticle
-	34, // 47: kinegate.v1.Ranking.closest_masses:type_name -> kinegate.v1.ClosestMasses
-	33, // 48: kinegate.v1.Ranking.fit_probability:type_name -> kinegate.v1.RankByFitProbability
-	35, // 49: kinegate.v1.ClosestMasses.masses:type_name -> kinegate.v1.MassReference
-	4,  // 50: kinegate.v1.CheckSelectionRequest.selection:type_name -> kinegate.v1.Selection
-	55, // 51: kinegate.v1.CheckSelectionResponse.faults:type_name -> kinegate.v1.FieldFault
-	4,  // 52: kinegate.v1.CheckSelectionResponse.selection:type_name -> kinegate.v1.Selection
-	38, // 53: kinegate.v1.CheckSelectionResponse.hypotheses:type_name -> kinegate.v1.HypothesisOutline
-	42, // 54: kinegate.v1.JudgeBlockRequest.selection:type_name -> kinegate.v1.SelectionSource
-	3,  // 55: kinegate.v1.JudgeBlockRequest.entries:type_name -> kinegate.v1.EntryDetail
-	56, // 56: kinegate.v1.JudgeBlockRequest.block:type_name -> kinegate.v1.EventBlock
-	57, // 57: kinegate.v1.JudgeBlockResponse.verdict:type_name -> kinegate.v1.VerdictBlock
-	42, // 58: kinegate.v1.ExplainVerdictRequest.selection:type_name -> kinegate.v1.SelectionSource
-	56, // 59: kinegate.v1.ExplainVerdictRequest.block:type_name -> kinegate.v1.EventBlock
-	4,  // 60: kinegate.v1.SelectionSource.given:type_name -> kinegate.v1.Selection
-	43, // 61: kinegate.v1.SelectionSource.named:type_name -> kinegate.v1.SelectionReference
-	46, // 62: kinegate.v1.JudgeRequest.open:type_name -> kinegate.v1.JudgeOpen
-	56, // 63: kinegate.v1.JudgeRequest.block:type_name -> kinegate.v1.EventBlock
-	49, // 64: kinegate.v1.JudgeRequest.heartbeat:type_name -> kinegate.v1.Heartbeat
-	47, // 65: kinegate.v1.JudgeResponse.opened:type_name -> kinegate.v1.JudgeOpened
-	57, // 66: kinegate.v1.JudgeResponse.verdict:type_name -> kinegate.v1.VerdictBlock
-	49, // 67: kinegate.v1.JudgeResponse.heartbeat:type_name -> kinegate.v1.Heartbeat
-	50, // 68: kinegate.v1.JudgeResponse.draining:type_name -> kinegate.v1.Draining
-	42, // 69: kinegate.v1.JudgeOpen.selection:type_name -> kinegate.v1.SelectionSource
-	3,  // 70: kinegate.v1.JudgeOpen.entries:type_name -> kinegate.v1.EntryDetail
-	58, // 71: kinegate.v1.JudgeOpen.limits:type_name -> kinegate.v1.Limits
-	48, // 72: kinegate.v1.JudgeOpened.credit:type_name -> kinegate.v1.Credit
-	58, // 73: kinegate.v1.JudgeOpened.limits:type_name -> kinegate.v1.Limits
-	38, // 74: kinegate.v1.JudgeOpened.hypotheses:type_name -> kinegate.v1.HypothesisOutline
-	36, // 75: kinegate.v1.SelectionService.CheckSelection:input_type -> kinegate.v1.CheckSelectionRequest
-	39, // 76: kinegate.v1.SelectionService.JudgeBlock:input_type -> kinegate.v1.JudgeBlockRequest
-	44, // 77: kinegate.v1.SelectionService.Judge:input_type -> kinegate.v1.JudgeRequest
-	41, // 78: kinegate.v1.SelectionService.ExplainVerdict:input_type -> kinegate.v1.ExplainVerdictRequest
-	37, // 79: kinegate.v1.SelectionService.CheckSelection:output_type -> kinegate.v1.CheckSelectionResponse
-	40, // 80: kinegate.v1.SelectionService.JudgeBlock:output_type -> kinegate.v1.JudgeBlockResponse
-	45, // 81: kinegate.v1.SelectionService.Judge:output_type -> kinegate.v1.JudgeResponse
-	59, // 82: kinegate.v1.SelectionService.ExplainVerdict:output_type -> kinegate.v1.ExplainVerdictResponse
-	79, // [79:83] is the sub-list for method output_type
-	75, // [75:79] is the sub-list for method input_type
-	75, // [75:75] is the sub-list for extension type_name
-	75, // [75:75] is the sub-list for extension extendee
-	0,  // [0:75] is the sub-list for field type_name
+	56, // 46: kinegate.v1.MomentumTransferWindow.initial:type_name -> kinegate.v1.InitialParticle
+	35, // 47: kinegate.v1.Ranking.closest_masses:type_name -> kinegate.v1.ClosestMasses
+	34, // 48: kinegate.v1.Ranking.fit_probability:type_name -> kinegate.v1.RankByFitProbability
+	36, // 49: kinegate.v1.ClosestMasses.masses:type_name -> kinegate.v1.MassReference
+	5,  // 50: kinegate.v1.CheckSelectionRequest.selection:type_name -> kinegate.v1.Selection
+	57, // 51: kinegate.v1.CheckSelectionResponse.faults:type_name -> kinegate.v1.FieldFault
+	5,  // 52: kinegate.v1.CheckSelectionResponse.selection:type_name -> kinegate.v1.Selection
+	40, // 53: kinegate.v1.CheckSelectionResponse.hypotheses:type_name -> kinegate.v1.HypothesisOutline
+	40, // 54: kinegate.v1.SelectionOutline.hypotheses:type_name -> kinegate.v1.HypothesisOutline
+	44, // 55: kinegate.v1.JudgeBlockRequest.selection:type_name -> kinegate.v1.SelectionSource
+	3,  // 56: kinegate.v1.JudgeBlockRequest.entries:type_name -> kinegate.v1.EntryDetail
+	58, // 57: kinegate.v1.JudgeBlockRequest.block:type_name -> kinegate.v1.EventBlock
+	59, // 58: kinegate.v1.JudgeBlockResponse.verdict:type_name -> kinegate.v1.VerdictBlock
+	39, // 59: kinegate.v1.JudgeBlockResponse.selection:type_name -> kinegate.v1.SelectionOutline
+	44, // 60: kinegate.v1.ExplainVerdictRequest.selection:type_name -> kinegate.v1.SelectionSource
+	58, // 61: kinegate.v1.ExplainVerdictRequest.block:type_name -> kinegate.v1.EventBlock
+	5,  // 62: kinegate.v1.SelectionSource.given:type_name -> kinegate.v1.Selection
+	45, // 63: kinegate.v1.SelectionSource.named:type_name -> kinegate.v1.SelectionReference
+	48, // 64: kinegate.v1.JudgeRequest.open:type_name -> kinegate.v1.JudgeOpen
+	58, // 65: kinegate.v1.JudgeRequest.block:type_name -> kinegate.v1.EventBlock
+	51, // 66: kinegate.v1.JudgeRequest.heartbeat:type_name -> kinegate.v1.Heartbeat
+	49, // 67: kinegate.v1.JudgeResponse.opened:type_name -> kinegate.v1.JudgeOpened
+	59, // 68: kinegate.v1.JudgeResponse.verdict:type_name -> kinegate.v1.VerdictBlock
+	51, // 69: kinegate.v1.JudgeResponse.heartbeat:type_name -> kinegate.v1.Heartbeat
+	52, // 70: kinegate.v1.JudgeResponse.draining:type_name -> kinegate.v1.Draining
+	39, // 71: kinegate.v1.JudgeResponse.taken:type_name -> kinegate.v1.SelectionOutline
+	44, // 72: kinegate.v1.JudgeOpen.selection:type_name -> kinegate.v1.SelectionSource
+	3,  // 73: kinegate.v1.JudgeOpen.entries:type_name -> kinegate.v1.EntryDetail
+	60, // 74: kinegate.v1.JudgeOpen.limits:type_name -> kinegate.v1.Limits
+	39, // 75: kinegate.v1.JudgeOpened.selection:type_name -> kinegate.v1.SelectionOutline
+	50, // 76: kinegate.v1.JudgeOpened.credit:type_name -> kinegate.v1.Credit
+	60, // 77: kinegate.v1.JudgeOpened.limits:type_name -> kinegate.v1.Limits
+	4,  // 78: kinegate.v1.Draining.reason:type_name -> kinegate.v1.DrainReason
+	37, // 79: kinegate.v1.SelectionService.CheckSelection:input_type -> kinegate.v1.CheckSelectionRequest
+	41, // 80: kinegate.v1.SelectionService.JudgeBlock:input_type -> kinegate.v1.JudgeBlockRequest
+	46, // 81: kinegate.v1.SelectionService.Judge:input_type -> kinegate.v1.JudgeRequest
+	43, // 82: kinegate.v1.SelectionService.ExplainVerdict:input_type -> kinegate.v1.ExplainVerdictRequest
+	38, // 83: kinegate.v1.SelectionService.CheckSelection:output_type -> kinegate.v1.CheckSelectionResponse
+	42, // 84: kinegate.v1.SelectionService.JudgeBlock:output_type -> kinegate.v1.JudgeBlockResponse
+	47, // 85: kinegate.v1.SelectionService.Judge:output_type -> kinegate.v1.JudgeResponse
+	61, // 86: kinegate.v1.SelectionService.ExplainVerdict:output_type -> kinegate.v1.ExplainVerdictResponse
+	83, // [83:87] is the sub-list for method output_type
+	79, // [79:83] is the sub-list for method input_type
+	79, // [79:79] is the sub-list for extension type_name
+	79, // [79:79] is the sub-list for extension extendee
+	0,  // [0:79] is the sub-list for field type_name
 }
 
 func init() { file_kinegate_v1_selection_proto_init() }
@@ -4454,30 +4624,31 @@ func file_kinegate_v1_selection_proto_init() {
 		(*CheckSelectionRequest_Selection)(nil),
 		(*CheckSelectionRequest_Yaml)(nil),
 	}
-	file_kinegate_v1_selection_proto_msgTypes[34].OneofWrappers = []any{}
-	file_kinegate_v1_selection_proto_msgTypes[38].OneofWrappers = []any{
+	file_kinegate_v1_selection_proto_msgTypes[35].OneofWrappers = []any{}
+	file_kinegate_v1_selection_proto_msgTypes[39].OneofWrappers = []any{
 		(*SelectionSource_Given)(nil),
 		(*SelectionSource_Named)(nil),
 	}
-	file_kinegate_v1_selection_proto_msgTypes[40].OneofWrappers = []any{
+	file_kinegate_v1_selection_proto_msgTypes[41].OneofWrappers = []any{
 		(*JudgeRequest_Open)(nil),
 		(*JudgeRequest_Block)(nil),
 		(*JudgeRequest_Heartbeat)(nil),
 	}
-	file_kinegate_v1_selection_proto_msgTypes[41].OneofWrappers = []any{
+	file_kinegate_v1_selection_proto_msgTypes[42].OneofWrappers = []any{
 		(*JudgeResponse_Opened)(nil),
 		(*JudgeResponse_Verdict)(nil),
 		(*JudgeResponse_Heartbeat)(nil),
 		(*JudgeResponse_Draining)(nil),
+		(*JudgeResponse_Taken)(nil),
 	}
-	file_kinegate_v1_selection_proto_msgTypes[42].OneofWrappers = []any{}
+	file_kinegate_v1_selection_proto_msgTypes[43].OneofWrappers = []any{}
 	type x struct{}
 	out := protoimpl.TypeBuilder{
 		File: protoimpl.DescBuilder{
 			GoPackagePath: reflect.TypeOf(x{}).PkgPath(),
 			RawDescriptor: unsafe.Slice(unsafe.StringData(file_kinegate_v1_selection_proto_rawDesc), len(file_kinegate_v1_selection_proto_rawDesc)),
-			NumEnums:      4,
-			NumMessages:   47,
+			NumEnums:      5,
+			NumMessages:   48,
 			NumExtensions: 0,
 			NumServices:   1,
 		},

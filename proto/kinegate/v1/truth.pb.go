@@ -67,9 +67,9 @@ type TruthColumns struct {
 	// True time of each candidate minus the event's.
 	BeamTimeNs []byte `protobuf:"bytes,16,opt,name=beam_time_ns,json=beamTimeNs,proto3" json:"beam_time_ns,omitempty"`
 	// For each measured object, int16: the row within its event of the particle that made
-	// it, of a merged cluster the one with most energy, -1 for noise. Empty without a
+	// it, of a merged cluster the one with most energy, -1 for noise. Absent without a
 	// detector.
-	ObjectParticles []byte `protobuf:"bytes,17,opt,name=object_particles,json=objectParticles,proto3" json:"object_particles,omitempty"`
+	ObjectParticles []byte `protobuf:"bytes,17,opt,name=object_particles,json=objectParticles,proto3,oneof" json:"object_particles,omitempty"`
 	// Polarisation of the beam photon of each event; absent means unpolarised.
 	Polarisation  *PolarisationColumns `protobuf:"bytes,18,opt,name=polarisation,proto3" json:"polarisation,omitempty"`
 	unknownFields protoimpl.UnknownFields
@@ -300,7 +300,7 @@ var File_kinegate_v1_truth_proto protoreflect.FileDescriptor
 
 const file_kinegate_v1_truth_proto_rawDesc = "" +
 	"\n" +
-	"\x17kinegate/v1/truth.proto\x12\vkinegate.v1\x1a\x17kinegate/v1/event.proto\"\xfd\x05\n" +
+	"\x17kinegate/v1/truth.proto\x12\vkinegate.v1\x1a\x17kinegate/v1/event.proto\"\x97\x06\n" +
 	"\fTruthColumns\x12\x1b\n" +
 	"\tevent_ids\x18\x01 \x01(\fR\beventIds\x12\x1a\n" +
 	"\bchannels\x18\x02 \x01(\fR\bchannels\x12\x18\n" +
@@ -319,9 +319,10 @@ const file_kinegate_v1_truth_proto_rawDesc = "" +
 	"\fbeam_offsets\x18\x0e \x01(\fR\vbeamOffsets\x12&\n" +
 	"\x0fbeam_energy_gev\x18\x0f \x01(\fR\rbeamEnergyGev\x12 \n" +
 	"\fbeam_time_ns\x18\x10 \x01(\fR\n" +
-	"beamTimeNs\x12)\n" +
-	"\x10object_particles\x18\x11 \x01(\fR\x0fobjectParticles\x12D\n" +
-	"\fpolarisation\x18\x12 \x01(\v2 .kinegate.v1.PolarisationColumnsR\fpolarisation\"D\n" +
+	"beamTimeNs\x12.\n" +
+	"\x10object_particles\x18\x11 \x01(\fH\x00R\x0fobjectParticles\x88\x01\x01\x12D\n" +
+	"\fpolarisation\x18\x12 \x01(\v2 .kinegate.v1.PolarisationColumnsR\fpolarisationB\x13\n" +
+	"\x11_object_particles\"D\n" +
 	"\x0fPositionColumns\x12\x0f\n" +
 	"\x03x_m\x18\x01 \x01(\fR\x02xM\x12\x0f\n" +
 	"\x03y_m\x18\x02 \x01(\fR\x02yM\x12\x0f\n" +
@@ -365,6 +366,7 @@ func file_kinegate_v1_truth_proto_init() {
 		return
 	}
 	file_kinegate_v1_event_proto_init()
+	file_kinegate_v1_truth_proto_msgTypes[0].OneofWrappers = []any{}
 	type x struct{}
 	out := protoimpl.TypeBuilder{
 		File: protoimpl.DescBuilder{

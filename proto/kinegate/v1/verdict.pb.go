@@ -613,7 +613,8 @@ func (x *EntryColumns) GetFits() *FitColumns {
 // FitColumns holds the fit of each entry's assignment.
 type FitColumns struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
-	// Status of each fit, uint8, values of FitStatus; 0 without a fit.
+	// Status of each fit, uint8, values of FitStatus; FIT_STATUS_UNSPECIFIED where
+	// nothing was fitted.
 	Statuses []byte `protobuf:"bytes,1,opt,name=statuses,proto3" json:"statuses,omitempty"`
 	// Chi-square, float64; the minimum only where the fit converged, NaN without a
 	// fit.

@@ -86,7 +86,7 @@ func decayCommand(p program) *cobra.Command {
 
 // request reads the flags.
 func (f *decayFlags) request(decay string) (*kinegatev1.DescribeDecayRequest, *decayValues, error) {
-	request, values := &kinegatev1.DescribeDecayRequest{Decay: decay}, &decayValues{}
+	request, values := &kinegatev1.DescribeDecayRequest{Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: decay}}, &decayValues{}
 	var err error
 	if request.Parent, err = motion("--parent", f.total, f.kinetic, f.momentum, false); err != nil {
 		return nil, nil, err

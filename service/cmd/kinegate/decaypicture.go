@@ -28,7 +28,7 @@ func (e *environment) drawDecay(
 		angles = append(angles, math.Min(most, least+x*(reachRad-least)))
 	}
 	curve, err := client.Decays.DescribeDecay(ctx, &kinegatev1.DescribeDecayRequest{
-		Decay: asked.GetDecay(), Parent: asked.GetParent(), OpeningAnglesRad: angles,
+		Form: &kinegatev1.DescribeDecayRequest_Decay{Decay: asked.GetDecay()}, Parent: asked.GetParent(), OpeningAnglesRad: angles,
 	})
 	if err != nil {
 		return err

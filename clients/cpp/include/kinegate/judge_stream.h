@@ -74,7 +74,8 @@ class JudgeStream {
   JudgeStream(const JudgeStream&) = delete;
   JudgeStream& operator=(const JudgeStream&) = delete;
 
-  // opened is the server's answer to the first opening: digest, credit, limits, hypotheses.
+  // opened is the server's answer to the first opening: selection, credit, limits. Where the opening
+  // says follow, another selection may take over: each Verdicts has the outline of its own.
   const v1::JudgeOpened& opened() const;
 
   // Push queues a block, sets its sequence, and returns that. It waits while the queue is full.

@@ -4,11 +4,13 @@
 #include <cstddef>
 #include <cstdint>
 #include <limits>
+#include <memory>
 #include <optional>
 #include <string>
 #include <vector>
 
 #include "kinegate/v1/fit.pb.h"
+#include "kinegate/v1/selection.pb.h"
 #include "kinegate/v1/verdict.pb.h"
 
 namespace kinegate {
@@ -43,7 +45,7 @@ struct Entry {
 class Verdicts {
  public:
   // Throws Error where the columns do not fit together.
-  explicit Verdicts(v1::VerdictBlock block);
+  explicit Verdicts(v1::VerdictBlock block, std::shared_ptr<const v1::SelectionOutline> outline = nullptr);
 
   // sequence is that of the event block.
   std::int64_t sequence() const { return block_.sequence(); }
@@ -51,6 +53,11 @@ class Verdicts {
   // no events then.
   bool rejected() const { return block_.has_rejected(); }
   const v1::Rejection& rejection() const { return block_.rejected(); }
+  // outline is that of the selection that judged: the names of its hypotheses and groups, and what
+  // entries hold. It is empty where the block did not come over a stream.
+  const v1::SelectionOutline& outline() const {
+    return outline_ ? *outline_ : v1::SelectionOutline::default_instance();
+  }
   // digest names the selection that judged.
   const std::string& digest() const { return block_.selection_digest(); }
 
@@ -73,6 +80,7 @@ class Verdicts {
 
  private:
   v1::VerdictBlock block_;
+  std::shared_ptr<const v1::SelectionOutline> outline_;
 };
 
 }  // namespace kinegate

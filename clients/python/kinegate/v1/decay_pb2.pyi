@@ -11,24 +11,24 @@ from typing import ClassVar as _ClassVar, Optional as _Optional, Union as _Union
 DESCRIPTOR: _descriptor.FileDescriptor
 
 class DescribeDecayRequest(_message.Message):
-    __slots__ = ("decay", "parent", "distances_m", "structured_decay", "intervals", "opening_angles_rad", "rest_frame_cosines", "laboratory_angles_rad")
+    __slots__ = ("decay", "structured_decay", "parent", "distances_m", "intervals", "opening_angles_rad", "rest_frame_cosines", "laboratory_angles_rad")
     DECAY_FIELD_NUMBER: _ClassVar[int]
+    STRUCTURED_DECAY_FIELD_NUMBER: _ClassVar[int]
     PARENT_FIELD_NUMBER: _ClassVar[int]
     DISTANCES_M_FIELD_NUMBER: _ClassVar[int]
-    STRUCTURED_DECAY_FIELD_NUMBER: _ClassVar[int]
     INTERVALS_FIELD_NUMBER: _ClassVar[int]
     OPENING_ANGLES_RAD_FIELD_NUMBER: _ClassVar[int]
     REST_FRAME_COSINES_FIELD_NUMBER: _ClassVar[int]
     LABORATORY_ANGLES_RAD_FIELD_NUMBER: _ClassVar[int]
     decay: str
+    structured_decay: _kinematics_pb2.Reaction
     parent: _kinematics_pb2.BeamMotion
     distances_m: _containers.RepeatedScalarFieldContainer[float]
-    structured_decay: _kinematics_pb2.Reaction
     intervals: _containers.RepeatedCompositeFieldContainer[DistanceInterval]
     opening_angles_rad: _containers.RepeatedScalarFieldContainer[float]
     rest_frame_cosines: _containers.RepeatedScalarFieldContainer[float]
     laboratory_angles_rad: _containers.RepeatedScalarFieldContainer[float]
-    def __init__(self, decay: _Optional[str] = ..., parent: _Optional[_Union[_kinematics_pb2.BeamMotion, _Mapping]] = ..., distances_m: _Optional[_Iterable[float]] = ..., structured_decay: _Optional[_Union[_kinematics_pb2.Reaction, _Mapping]] = ..., intervals: _Optional[_Iterable[_Union[DistanceInterval, _Mapping]]] = ..., opening_angles_rad: _Optional[_Iterable[float]] = ..., rest_frame_cosines: _Optional[_Iterable[float]] = ..., laboratory_angles_rad: _Optional[_Iterable[float]] = ...) -> None: ...
+    def __init__(self, decay: _Optional[str] = ..., structured_decay: _Optional[_Union[_kinematics_pb2.Reaction, _Mapping]] = ..., parent: _Optional[_Union[_kinematics_pb2.BeamMotion, _Mapping]] = ..., distances_m: _Optional[_Iterable[float]] = ..., intervals: _Optional[_Iterable[_Union[DistanceInterval, _Mapping]]] = ..., opening_angles_rad: _Optional[_Iterable[float]] = ..., rest_frame_cosines: _Optional[_Iterable[float]] = ..., laboratory_angles_rad: _Optional[_Iterable[float]] = ...) -> None: ...
 
 class DistanceInterval(_message.Message):
     __slots__ = ("from_m", "to_m")

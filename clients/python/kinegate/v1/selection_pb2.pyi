@@ -41,6 +41,12 @@ class EntryDetail(int, metaclass=_enum_type_wrapper.EnumTypeWrapper):
     ENTRY_DETAIL_NONE: _ClassVar[EntryDetail]
     ENTRY_DETAIL_ACCEPTED: _ClassVar[EntryDetail]
     ENTRY_DETAIL_ALL: _ClassVar[EntryDetail]
+
+class DrainReason(int, metaclass=_enum_type_wrapper.EnumTypeWrapper):
+    __slots__ = ()
+    DRAIN_REASON_UNSPECIFIED: _ClassVar[DrainReason]
+    DRAIN_REASON_SERVER_STOPS: _ClassVar[DrainReason]
+    DRAIN_REASON_CONNECTION_AGE: _ClassVar[DrainReason]
 ROLE_UNSPECIFIED: Role
 ROLE_GATE: Role
 ROLE_SHADOW: Role
@@ -56,6 +62,9 @@ ENTRY_DETAIL_UNSPECIFIED: EntryDetail
 ENTRY_DETAIL_NONE: EntryDetail
 ENTRY_DETAIL_ACCEPTED: EntryDetail
 ENTRY_DETAIL_ALL: EntryDetail
+DRAIN_REASON_UNSPECIFIED: DrainReason
+DRAIN_REASON_SERVER_STOPS: DrainReason
+DRAIN_REASON_CONNECTION_AGE: DrainReason
 
 class Selection(_message.Message):
     __slots__ = ("name", "description", "hypotheses", "groups", "assignment_budget_count")
@@ -431,6 +440,16 @@ class CheckSelectionResponse(_message.Message):
     largest_reply_byte_count: int
     def __init__(self, faults: _Optional[_Iterable[_Union[_fault_pb2.FieldFault, _Mapping]]] = ..., selection: _Optional[_Union[Selection, _Mapping]] = ..., selection_digest: _Optional[str] = ..., hypotheses: _Optional[_Iterable[_Union[HypothesisOutline, _Mapping]]] = ..., largest_reply_byte_count: _Optional[int] = ...) -> None: ...
 
+class SelectionOutline(_message.Message):
+    __slots__ = ("selection_digest", "hypotheses", "groups")
+    SELECTION_DIGEST_FIELD_NUMBER: _ClassVar[int]
+    HYPOTHESES_FIELD_NUMBER: _ClassVar[int]
+    GROUPS_FIELD_NUMBER: _ClassVar[int]
+    selection_digest: str
+    hypotheses: _containers.RepeatedCompositeFieldContainer[HypothesisOutline]
+    groups: _containers.RepeatedScalarFieldContainer[str]
+    def __init__(self, selection_digest: _Optional[str] = ..., hypotheses: _Optional[_Iterable[_Union[HypothesisOutline, _Mapping]]] = ..., groups: _Optional[_Iterable[str]] = ...) -> None: ...
+
 class HypothesisOutline(_message.Message):
     __slots__ = ("name", "reaction", "products", "observables", "degrees_of_freedom")
     NAME_FIELD_NUMBER: _ClassVar[int]
@@ -456,10 +475,12 @@ class JudgeBlockRequest(_message.Message):
     def __init__(self, selection: _Optional[_Union[SelectionSource, _Mapping]] = ..., entries: _Optional[_Union[EntryDetail, str]] = ..., block: _Optional[_Union[_event_pb2.EventBlock, _Mapping]] = ...) -> None: ...
 
 class JudgeBlockResponse(_message.Message):
-    __slots__ = ("verdict",)
+    __slots__ = ("verdict", "selection")
     VERDICT_FIELD_NUMBER: _ClassVar[int]
+    SELECTION_FIELD_NUMBER: _ClassVar[int]
     verdict: _verdict_pb2.VerdictBlock
-    def __init__(self, verdict: _Optional[_Union[_verdict_pb2.VerdictBlock, _Mapping]] = ...) -> None: ...
+    selection: SelectionOutline
+    def __init__(self, verdict: _Optional[_Union[_verdict_pb2.VerdictBlock, _Mapping]] = ..., selection: _Optional[_Union[SelectionOutline, _Mapping]] = ...) -> None: ...
 
 class ExplainVerdictRequest(_message.Message):
     __slots__ = ("selection", "block", "event_index", "max_assignment_count")
@@ -500,16 +521,18 @@ class JudgeRequest(_message.Message):
     def __init__(self, open: _Optional[_Union[JudgeOpen, _Mapping]] = ..., block: _Optional[_Union[_event_pb2.EventBlock, _Mapping]] = ..., heartbeat: _Optional[_Union[Heartbeat, _Mapping]] = ...) -> None: ...
 
 class JudgeResponse(_message.Message):
-    __slots__ = ("opened", "verdict", "heartbeat", "draining")
+    __slots__ = ("opened", "verdict", "heartbeat", "draining", "taken")
     OPENED_FIELD_NUMBER: _ClassVar[int]
     VERDICT_FIELD_NUMBER: _ClassVar[int]
     HEARTBEAT_FIELD_NUMBER: _ClassVar[int]
     DRAINING_FIELD_NUMBER: _ClassVar[int]
+    TAKEN_FIELD_NUMBER: _ClassVar[int]
     opened: JudgeOpened
     verdict: _verdict_pb2.VerdictBlock
     heartbeat: Heartbeat
     draining: Draining
-    def __init__(self, opened: _Optional[_Union[JudgeOpened, _Mapping]] = ..., verdict: _Optional[_Union[_verdict_pb2.VerdictBlock, _Mapping]] = ..., heartbeat: _Optional[_Union[Heartbeat, _Mapping]] = ..., draining: _Optional[_Union[Draining, _Mapping]] = ...) -> None: ...
+    taken: SelectionOutline
+    def __init__(self, opened: _Optional[_Union[JudgeOpened, _Mapping]] = ..., verdict: _Optional[_Union[_verdict_pb2.VerdictBlock, _Mapping]] = ..., heartbeat: _Optional[_Union[Heartbeat, _Mapping]] = ..., draining: _Optional[_Union[Draining, _Mapping]] = ..., taken: _Optional[_Union[SelectionOutline, _Mapping]] = ...) -> None: ...
 
 class JudgeOpen(_message.Message):
     __slots__ = ("selection", "first_sequence", "entries", "latency_budget_s", "follow", "limits")
@@ -528,16 +551,14 @@ class JudgeOpen(_message.Message):
     def __init__(self, selection: _Optional[_Union[SelectionSource, _Mapping]] = ..., first_sequence: _Optional[int] = ..., entries: _Optional[_Union[EntryDetail, str]] = ..., latency_budget_s: _Optional[float] = ..., follow: bool = ..., limits: _Optional[_Union[_info_pb2.Limits, _Mapping]] = ...) -> None: ...
 
 class JudgeOpened(_message.Message):
-    __slots__ = ("selection_digest", "credit", "limits", "hypotheses")
-    SELECTION_DIGEST_FIELD_NUMBER: _ClassVar[int]
+    __slots__ = ("selection", "credit", "limits")
+    SELECTION_FIELD_NUMBER: _ClassVar[int]
     CREDIT_FIELD_NUMBER: _ClassVar[int]
     LIMITS_FIELD_NUMBER: _ClassVar[int]
-    HYPOTHESES_FIELD_NUMBER: _ClassVar[int]
-    selection_digest: str
+    selection: SelectionOutline
     credit: Credit
     limits: _info_pb2.Limits
-    hypotheses: _containers.RepeatedCompositeFieldContainer[HypothesisOutline]
-    def __init__(self, selection_digest: _Optional[str] = ..., credit: _Optional[_Union[Credit, _Mapping]] = ..., limits: _Optional[_Union[_info_pb2.Limits, _Mapping]] = ..., hypotheses: _Optional[_Iterable[_Union[HypothesisOutline, _Mapping]]] = ...) -> None: ...
+    def __init__(self, selection: _Optional[_Union[SelectionOutline, _Mapping]] = ..., credit: _Optional[_Union[Credit, _Mapping]] = ..., limits: _Optional[_Union[_info_pb2.Limits, _Mapping]] = ...) -> None: ...
 
 class Credit(_message.Message):
     __slots__ = ("block_count", "byte_count")
@@ -558,9 +579,11 @@ class Heartbeat(_message.Message):
     def __init__(self, received_sequence: _Optional[int] = ..., answered_sequence: _Optional[int] = ..., oldest_pending_s: _Optional[float] = ...) -> None: ...
 
 class Draining(_message.Message):
-    __slots__ = ("answered_sequence", "grace_s")
+    __slots__ = ("answered_sequence", "grace_s", "reason")
     ANSWERED_SEQUENCE_FIELD_NUMBER: _ClassVar[int]
     GRACE_S_FIELD_NUMBER: _ClassVar[int]
+    REASON_FIELD_NUMBER: _ClassVar[int]
     answered_sequence: int
     grace_s: float
-    def __init__(self, answered_sequence: _Optional[int] = ..., grace_s: _Optional[float] = ...) -> None: ...
+    reason: DrainReason
+    def __init__(self, answered_sequence: _Optional[int] = ..., grace_s: _Optional[float] = ..., reason: _Optional[_Union[DrainReason, str]] = ...) -> None: ...

@@ -25,7 +25,7 @@ _sym_db = _symbol_database.Default()
 from kinegate.v1 import event_pb2 as kinegate_dot_v1_dot_event__pb2
 
 
-DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n\x17kinegate/v1/truth.proto\x12\x0bkinegate.v1\x1a\x17kinegate/v1/event.proto\"\xa7\x04\n\x0cTruthColumns\x12\x11\n\tevent_ids\x18\x01 \x01(\x0c\x12\x10\n\x08\x63hannels\x18\x02 \x01(\x0c\x12\x0f\n\x07weights\x18\x03 \x01(\x0c\x12\x39\n\rinitial_state\x18\x04 \x01(\x0b\x32\".kinegate.v1.EnergyMomentumColumns\x12,\n\x06vertex\x18\x05 \x01(\x0b\x32\x1c.kinegate.v1.PositionColumns\x12\x18\n\x10particle_offsets\x18\x06 \x01(\x0c\x12\x18\n\x10particle_numbers\x18\x07 \x01(\x0c\x12\x34\n\x08momentum\x18\x08 \x01(\x0b\x32\".kinegate.v1.EnergyMomentumColumns\x12\x10\n\x08mass_gev\x18\t \x01(\x0c\x12\x0f\n\x07parents\x18\n \x01(\x0c\x12\x0f\n\x07\x64\x65\x63\x61yed\x18\x0b \x01(\x0c\x12,\n\x06origin\x18\x0c \x01(\x0b\x32\x1c.kinegate.v1.PositionColumns\x12\x15\n\rproper_time_s\x18\r \x01(\x0c\x12\x14\n\x0c\x62\x65\x61m_offsets\x18\x0e \x01(\x0c\x12\x17\n\x0f\x62\x65\x61m_energy_gev\x18\x0f \x01(\x0c\x12\x14\n\x0c\x62\x65\x61m_time_ns\x18\x10 \x01(\x0c\x12\x18\n\x10object_particles\x18\x11 \x01(\x0c\x12\x36\n\x0cpolarisation\x18\x12 \x01(\x0b\x32 .kinegate.v1.PolarisationColumns\"8\n\x0fPositionColumns\x12\x0b\n\x03x_m\x18\x01 \x01(\x0c\x12\x0b\n\x03y_m\x18\x02 \x01(\x0c\x12\x0b\n\x03z_m\x18\x03 \x01(\x0c\x42\x33Z1example.org/kinegate/proto/kinegate/v1;kinegatev1b\x06proto3')
+DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n\x17kinegate/v1/truth.proto\x12\x0bkinegate.v1\x1a\x17kinegate/v1/event.proto\"\xc1\x04\n\x0cTruthColumns\x12\x11\n\tevent_ids\x18\x01 \x01(\x0c\x12\x10\n\x08\x63hannels\x18\x02 \x01(\x0c\x12\x0f\n\x07weights\x18\x03 \x01(\x0c\x12\x39\n\rinitial_state\x18\x04 \x01(\x0b\x32\".kinegate.v1.EnergyMomentumColumns\x12,\n\x06vertex\x18\x05 \x01(\x0b\x32\x1c.kinegate.v1.PositionColumns\x12\x18\n\x10particle_offsets\x18\x06 \x01(\x0c\x12\x18\n\x10particle_numbers\x18\x07 \x01(\x0c\x12\x34\n\x08momentum\x18\x08 \x01(\x0b\x32\".kinegate.v1.EnergyMomentumColumns\x12\x10\n\x08mass_gev\x18\t \x01(\x0c\x12\x0f\n\x07parents\x18\n \x01(\x0c\x12\x0f\n\x07\x64\x65\x63\x61yed\x18\x0b \x01(\x0c\x12,\n\x06origin\x18\x0c \x01(\x0b\x32\x1c.kinegate.v1.PositionColumns\x12\x15\n\rproper_time_s\x18\r \x01(\x0c\x12\x14\n\x0c\x62\x65\x61m_offsets\x18\x0e \x01(\x0c\x12\x17\n\x0f\x62\x65\x61m_energy_gev\x18\x0f \x01(\x0c\x12\x14\n\x0c\x62\x65\x61m_time_ns\x18\x10 \x01(\x0c\x12\x1d\n\x10object_particles\x18\x11 \x01(\x0cH\x00\x88\x01\x01\x12\x36\n\x0cpolarisation\x18\x12 \x01(\x0b\x32 .kinegate.v1.PolarisationColumnsB\x13\n\x11_object_particles\"8\n\x0fPositionColumns\x12\x0b\n\x03x_m\x18\x01 \x01(\x0c\x12\x0b\n\x03y_m\x18\x02 \x01(\x0c\x12\x0b\n\x03z_m\x18\x03 \x01(\x0c\x42\x33Z1example.org/kinegate/proto/kinegate/v1;kinegatev1b\x06proto3')
 
 _globals = globals()
 _builder.BuildMessageAndEnumDescriptors(DESCRIPTOR, _globals)
@@ -34,7 +34,7 @@ if not _descriptor._USE_C_DESCRIPTORS:
   _globals['DESCRIPTOR']._loaded_options = None
   _globals['DESCRIPTOR']._serialized_options = b'Z1example.org/kinegate/proto/kinegate/v1;kinegatev1'
   _globals['_TRUTHCOLUMNS']._serialized_start=66
-  _globals['_TRUTHCOLUMNS']._serialized_end=617
-  _globals['_POSITIONCOLUMNS']._serialized_start=619
-  _globals['_POSITIONCOLUMNS']._serialized_end=675
+  _globals['_TRUTHCOLUMNS']._serialized_end=643
+  _globals['_POSITIONCOLUMNS']._serialized_start=645
+  _globals['_POSITIONCOLUMNS']._serialized_end=701
 # @@protoc_insertion_point(module_scope)
