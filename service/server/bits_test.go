@@ -100,7 +100,7 @@ func digest(t *testing.T, r *running, open *kinegatev1.JudgeOpen, sample history
 	t.Helper()
 	const events = 3000
 	sum, accepted := sha256.New(), 0
-	verify(t, history.New(0), history.Run{
+	verify(t, history.New(open), history.Run{
 		Client: r.client(t), Open: open, Sample: sample, Events: events, PerBlock: 500,
 		Answered: func(v *kinegatev1.VerdictBlock) {
 			records, err := history.Records(v, int(v.GetEventCount()))

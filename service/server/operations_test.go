@@ -2,6 +2,7 @@ package server
 
 import (
 	"crypto/tls"
+	"errors"
 	"fmt"
 	"net"
 	"os"
@@ -17,6 +18,7 @@ import (
 	"google.golang.org/grpc/credentials/insecure"
 	healthpb "google.golang.org/grpc/health/grpc_health_v1"
 
+	"example.org/kinegate/clients/go/history"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
 )
 
@@ -200,12 +202,14 @@ func TestDrainWithEverything(t *testing.T) {
 		t.Fatal(err)
 	}
 	defer func() { _ = half.Close() }()
+	open := &kinegatev1.JudgeOpen{Selection: given(pairSelection())}
+	known := learnedPairs(t, connect(General), open, 200, drainedEvents) // the first of many
 	var answered, lost atomic.Int64
 	var all sync.WaitGroup
 	for range live {
 		stream := idleJudge(t, connect(Gate))
 		all.Go(func() {
-			n, err := judgeUntilDrained(stream)
+			n, err := judgeUntilDrained(stream, known.Another(open))
 			answered.Add(n)
 			if err != nil {
 				lost.Add(1)
@@ -234,13 +238,17 @@ func TestDrainWithEverything(t *testing.T) {
 	}
 }
 
+// drainedEvents is how many events a block has.
+const drainedEvents = 100
+
 // judgeUntilDrained keeps blocks under way until the server says goodbye, and holds its
-// last word against the verdicts that came.
-func judgeUntilDrained(stream judgeClient) (answered int64, err error) {
+// last word against the verdicts that came, and these against the checker.
+func judgeUntilDrained(stream judgeClient, c *history.Checker) (answered int64, err error) {
 	next := int64(0)
 	ask := func() {
-		block := pairBlock(next, 100)
+		block := pairBlock(next, drainedEvents)
 		next++
+		c.Sent(block)
 		// A server that drains reads no more; what it has read is what counts.
 		_ = stream.Send(&kinegatev1.JudgeRequest{Frame: &kinegatev1.JudgeRequest_Block{Block: block}})
 	}
@@ -253,9 +261,7 @@ func judgeUntilDrained(stream judgeClient) (answered int64, err error) {
 			return answered, fmt.Errorf("no goodbye after %d verdicts: %w", answered, err)
 		}
 		if v := response.GetVerdict(); v != nil {
-			if v.GetSequence() != answered {
-				return answered, fmt.Errorf("verdict %d after %d", v.GetSequence(), answered-1)
-			}
+			c.Answered(v)
 			answered++
 			ask()
 		}
@@ -265,6 +271,9 @@ func judgeUntilDrained(stream judgeClient) (answered int64, err error) {
 			}
 			for err == nil {
 				_, err = stream.Recv() // to the end, whatever its status
+			}
+			if faults := c.Faults(false); len(faults) > 0 {
+				return answered, errors.New(strings.Join(faults, "; "))
 			}
 			return answered, nil
 		}

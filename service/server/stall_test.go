@@ -131,7 +131,7 @@ func TestStalledReaderBehindProxy(t *testing.T) {
 func TestWriterWithoutReader(t *testing.T) {
 	r := start(t)
 	const perBlock = 4000
-	c := learned(t, r, history.AllEntries(), 3*perBlock)
+	c := learned(t, r, history.AllEntries(), 8*perBlock)
 	for name, entries := range map[string]kinegatev1.EntryDetail{
 		"large replies": kinegatev1.EntryDetail_ENTRY_DETAIL_ALL, "small replies": kinegatev1.EntryDetail_ENTRY_DETAIL_NONE,
 	} {
@@ -173,7 +173,7 @@ func TestWriterWithoutReader(t *testing.T) {
 func writeAll(t *testing.T, stream judgeClient, most, perBlock int, c *history.Checker) (bytes int, longest time.Duration) {
 	t.Helper()
 	for i := int64(0); bytes < most; i++ {
-		block := history.Photons(int(i%3)*perBlock, perBlock)
+		block := history.Photons(int(i)*perBlock, perBlock)
 		block.Sequence = i
 		c.Sent(block)
 		begun := time.Now()

@@ -7,6 +7,7 @@ package history
 import (
 	"encoding/binary"
 	"fmt"
+	"slices"
 	"sync"
 
 	"example.org/kinegate/proto/column"
@@ -18,8 +19,10 @@ import (
 type Checker struct {
 	mu        sync.Mutex
 	first     int64
-	next      int64 // sequence of the next answer
-	sent      map[int64][]int64
+	next      int64             // sequence of the next answer
+	sent      map[int64][]int64 // events of each sequence
+	place     map[int64]int64   // sequence of each event
+	budget    bool              // without one, no event may be late
 	reference map[int64]string
 	faults    []string
 	counts    Counts
@@ -35,9 +38,24 @@ type Counts struct {
 // maxFaults bounds the faults kept: the first ones tell.
 const maxFaults = 20
 
-// New returns a checker whose first block has the given sequence.
-func New(first int64) *Checker {
-	return &Checker{first: first, next: first, sent: map[int64][]int64{}, reference: map[int64]string{}}
+// New returns a checker of a stream with an opening.
+func New(open *kinegatev1.JudgeOpen) *Checker {
+	c := &Checker{sent: map[int64][]int64{}, place: map[int64]int64{}, reference: map[int64]string{}}
+	c.opens(open)
+	return c
+}
+
+// Another returns a checker of another stream that knows what was learned, which must be
+// over: the two share it.
+func (c *Checker) Another(open *kinegatev1.JudgeOpen) *Checker {
+	other := New(open)
+	other.reference = c.reference
+	return other
+}
+
+func (c *Checker) opens(open *kinegatev1.JudgeOpen) {
+	c.first, c.budget = open.GetFirstSequence(), open.LatencyBudgetS != nil
+	c.next = c.first
 }
 
 // Learn takes a block and its verdict from a run that was not interrupted. Event ids
@@ -57,6 +75,9 @@ func (c *Checker) Learn(block *kinegatev1.EventBlock, verdict *kinegatev1.Verdic
 		if _, known := c.reference[id]; known {
 			return fmt.Errorf("event %d was learned before", id)
 		}
+		if records[i] == expired {
+			return fmt.Errorf("event %d was late, which teaches nothing", id)
+		}
 		c.reference[id] = records[i]
 	}
 	return nil
@@ -69,10 +90,11 @@ func (c *Checker) Again() {
 	defer c.mu.Unlock()
 	c.next = c.first
 	clear(c.sent)
+	clear(c.place)
 }
 
 // Sent notes a block that was sent, or sent again: one sequence must always stand for
-// the same events.
+// the same events, and an event for one sequence.
 func (c *Checker) Sent(block *kinegatev1.EventBlock) {
 	ids, err := column.Int64s(block.GetEventIds())
 	c.mu.Lock()
@@ -81,10 +103,20 @@ func (c *Checker) Sent(block *kinegatev1.EventBlock) {
 	if err != nil {
 		c.faultLocked("block %d: %v", sequence, err)
 	}
-	if _, again := c.sent[sequence]; !again {
-		c.counts.Sent += len(ids)
+	if before, again := c.sent[sequence]; again {
+		if !slices.Equal(before, ids) {
+			c.faultLocked("sequence %d was sent with other events than before", sequence)
+		}
+		return
 	}
+	c.counts.Sent += len(ids)
 	c.sent[sequence] = ids
+	for _, id := range ids {
+		if other, known := c.place[id]; known {
+			c.faultLocked("event %d was sent in sequence %d and in %d", id, other, sequence)
+		}
+		c.place[id] = sequence
+	}
 }
 
 // Answered notes a verdict that the caller got.
@@ -110,6 +142,9 @@ func (c *Checker) Answered(verdict *kinegatev1.VerdictBlock) {
 		c.counts.Answered++
 		if records[i] == expired {
 			c.counts.Expired++
+			if !c.budget {
+				c.faultLocked("event %d was late where there is no budget", id)
+			}
 			continue
 		}
 		if want, learned := c.reference[id]; learned && want != records[i] {

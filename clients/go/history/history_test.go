@@ -3,8 +3,6 @@ package history_test
 import (
 	"testing"
 
-	"google.golang.org/protobuf/proto"
-
 	"example.org/kinegate/clients/go/history"
 	"example.org/kinegate/proto/column"
 	kinegatev1 "example.org/kinegate/proto/kinegate/v1"
@@ -34,38 +32,94 @@ func run(blocks int) (events []*kinegatev1.EventBlock, verdicts []*kinegatev1.Ve
 	return events, verdicts
 }
 
-func check(t *testing.T, change func(v []*kinegatev1.VerdictBlock) []*kinegatev1.VerdictBlock) []string {
+// open is the opening of the run.
+func open() *kinegatev1.JudgeOpen { return &kinegatev1.JudgeOpen{FirstSequence: 5} }
+
+// check learns the run and follows one whose blocks and verdicts are changed.
+func check(
+	t *testing.T, open *kinegatev1.JudgeOpen,
+	sent func([]*kinegatev1.EventBlock) []*kinegatev1.EventBlock, answered func([]*kinegatev1.VerdictBlock) []*kinegatev1.VerdictBlock,
+) []string {
 	t.Helper()
 	events, verdicts := run(4)
-	c := history.New(5)
+	c := history.New(open)
 	for i := range events {
 		if err := c.Learn(events[i], verdicts[i]); err != nil {
 			t.Fatal(err)
 		}
-		c.Sent(events[i])
 	}
-	var seen []*kinegatev1.VerdictBlock
-	for _, v := range verdicts {
-		seen = append(seen, proto.CloneOf(v))
+	events, verdicts = run(4)
+	for _, b := range sent(events) {
+		c.Sent(b)
 	}
-	for _, v := range change(seen) {
+	for _, v := range answered(verdicts) {
 		c.Answered(v)
 	}
 	return c.Faults(true)
 }
 
-// TestBreachesAreFound: the checker passes a true history and fails each false one.
-func TestBreachesAreFound(t *testing.T) {
+func same[T any](x T) T { return x }
+
+// TestTrueHistories: what may happen is no fault.
+func TestTrueHistories(t *testing.T) {
 	t.Parallel()
-	type blocks = []*kinegatev1.VerdictBlock
-	if faults := check(t, func(v blocks) blocks { return v }); len(faults) > 0 {
+	if faults := check(t, open(), same, same); len(faults) > 0 {
 		t.Errorf("a true history: %v", faults)
 	}
-	late := func(v blocks) blocks { v[1].Statuses[0] = 7; v[1].Gate[0] &^= 1; return v }
-	if faults := check(t, late); len(faults) > 0 {
+	again := func(b []*kinegatev1.EventBlock) []*kinegatev1.EventBlock { return append(b, b[1], b[2], b[3]) }
+	if faults := check(t, open(), again, same); len(faults) > 0 {
+		t.Errorf("blocks sent again: %v", faults)
+	}
+	budget := open()
+	budget.LatencyBudgetS = new(1.0)
+	if faults := check(t, budget, same, late); len(faults) > 0 {
 		t.Errorf("a late event: %v", faults)
 	}
+}
+
+// late makes an event late.
+func late(v []*kinegatev1.VerdictBlock) []*kinegatev1.VerdictBlock {
+	v[1].Statuses[0] = 7
+	v[1].Gate[0] &^= 1
+	return v
+}
+
+// TestLateEventsTeachNothing: what was not judged is no reference.
+func TestLateEventsTeachNothing(t *testing.T) {
+	t.Parallel()
+	events, verdicts := run(2)
+	if err := history.New(open()).Learn(events[1], late(verdicts)[1]); err == nil {
+		t.Error("it was learned")
+	}
+}
+
+// TestBreachesAreFound: the checker fails each false history.
+func TestBreachesAreFound(t *testing.T) {
+	t.Parallel()
+	type sent = []*kinegatev1.EventBlock
+	ids := func(sequence int64, ids ...int64) *kinegatev1.EventBlock {
+		return &kinegatev1.EventBlock{Sequence: sequence, EventIds: column.Int64(ids)}
+	}
+	for name, change := range map[string]func(b sent) sent{
+		"sent again with other events": func(b sent) sent { return append(b, ids(6, 3, 4, 99)) },
+		"sent again with fewer events": func(b sent) sent { return append(b, ids(6, 3, 4)) },
+		"events under two sequences":   func(b sent) sent { b[2], b[3] = ids(7, 90, 91, 92), ids(8, 90, 91, 92); return b },
+		"an event under two sequences": func(b sent) sent { b[2], b[3] = ids(7, 90, 91, 92), ids(8, 93, 94, 90); return b },
+		"an event twice in a block":    func(b sent) sent { b[3] = ids(8, 90, 91, 90); return b },
+	} {
+		if faults := check(t, open(), change, same); len(faults) == 0 {
+			t.Errorf("%s goes unnoticed", name)
+		}
+	}
+	type blocks = []*kinegatev1.VerdictBlock
 	for name, change := range map[string]func(v blocks) blocks{
+		"late without a budget": late,
+		"all late without a budget": func(v blocks) blocks {
+			for _, one := range v {
+				one.Statuses = []byte{7, 7, 7}
+			}
+			return v
+		},
 		"dropped":          func(v blocks) blocks { return append(v[:1], v[2:]...) },
 		"last dropped":     func(v blocks) blocks { return v[:3] },
 		"doubled":          func(v blocks) blocks { return append(v, v[3]) },
@@ -84,7 +138,7 @@ func TestBreachesAreFound(t *testing.T) {
 		"assignment":       func(v blocks) blocks { v[2].Entries.Assignments[0] ^= 1; return v },
 		"rejected":         func(v blocks) blocks { v[2].Rejected = &kinegatev1.Rejection{Reason: "BLOCK_INVALID"}; return v },
 	} {
-		if faults := check(t, change); len(faults) == 0 {
+		if faults := check(t, open(), same, change); len(faults) == 0 {
 			t.Errorf("%s goes unnoticed", name)
 		}
 	}

@@ -25,7 +25,7 @@ func Learn(
 	ctx context.Context, client *kinegate.Client, open *kinegatev1.JudgeOpen, sample Sample, events int,
 ) (*Checker, error) {
 	const perBlock = 311
-	c := New(open.GetFirstSequence())
+	c := New(open)
 	stream, err := client.Judge(ctx, open, kinegate.JudgeOptions{})
 	if err != nil {
 		return nil, err
@@ -65,6 +65,9 @@ type Run struct {
 
 // Check does a run and returns everything that was wrong with it.
 func (c *Checker) Check(ctx context.Context, r Run) error {
+	c.mu.Lock()
+	c.opens(r.Open)
+	c.mu.Unlock()
 	stream, err := r.Client.Judge(ctx, r.Open, r.Options)
 	if err != nil {
 		return err

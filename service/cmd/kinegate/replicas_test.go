@@ -56,7 +56,13 @@ func TestStreamsOutliveConnections(t *testing.T) {
 		t.Fatal(err)
 	}
 	defer func() { _ = client.Close() }()
-	ctx, cancel := context.WithTimeout(t.Context(), spanOf(t, "AGE_SPAN", 2*time.Minute))
+	const perBlock, pace = 20, 100 * time.Millisecond
+	span := spanOf(t, "AGE_SPAN", 2*time.Minute)
+	known, err := history.LearnSample(t.Context(), client, history.AllEntries(), perBlock*int(span/pace))
+	if err != nil {
+		t.Fatal(err)
+	}
+	ctx, cancel := context.WithTimeout(t.Context(), span)
 	defer cancel()
 	var handed, unavailable, blocks, failed atomic.Int64
 	var all sync.WaitGroup
@@ -75,18 +81,27 @@ func TestStreamsOutliveConnections(t *testing.T) {
 				return
 			}
 			defer stream.Close()
-			for from := 0; ctx.Err() == nil; from += 20 {
-				err := stream.Send(history.Photons(from, 20))
+			c := known.Another(history.AllEntries())
+			for sequence := int64(0); ctx.Err() == nil; sequence++ {
+				block := history.Photons(int(sequence)*perBlock, perBlock)
+				block.Sequence = sequence
+				c.Sent(block)
+				var v *kinegatev1.VerdictBlock
+				err := stream.Send(block)
 				if err == nil {
-					_, err = stream.Recv()
+					v, err = stream.Recv()
 				}
 				if err != nil {
 					failed.Add(1)
 					t.Error(err)
 					return
 				}
+				c.Answered(v)
 				blocks.Add(1)
-				time.Sleep(100 * time.Millisecond)
+				time.Sleep(pace)
+			}
+			if faults := c.Faults(true); len(faults) > 0 {
+				t.Error(faults)
 			}
 		})
 	}
