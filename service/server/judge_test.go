@@ -137,17 +137,11 @@ func TestJudgeAnswersInOrder(t *testing.T) {
 	const first, blocks, events = 41, 100, 300
 	open := &kinegatev1.JudgeOpen{
 		Selection: given(pairSelection()), FirstSequence: first, Entries: kinegatev1.EntryDetail_ENTRY_DETAIL_ACCEPTED,
-<<<<<<< /tmp/contract/m.cur
 	}
 	c := learnedPairs(t, r.general(t), open, blocks, events)
 	stream, opened := openJudge(t, r, open)
-	if opened.GetCredit().GetBlockCount() != 8 || len(opened.GetSelectionDigest()) != 64 ||
-		len(opened.GetHypotheses()) != 1 || opened.GetHypotheses()[0].GetObservables()[0] != "mass" {
-=======
-	})
 	if opened.GetCredit().GetBlockCount() != 8 || len(opened.GetSelection().GetSelectionDigest()) != 64 ||
 		len(opened.GetSelection().GetHypotheses()) != 1 || opened.GetSelection().GetHypotheses()[0].GetObservables()[0] != "mass" {
->>>>>>> /tmp/contract/m.new
 		t.Errorf("opened: %v", opened)
 	}
 	for i := range int64(blocks) {
