@@ -84,7 +84,7 @@ TEST(Copies, PushingIsNoneAndSerialisingTheSecond) {
   bool own = false;
   before = allocated;
   ASSERT_TRUE(grpc::SerializationTraits<v1::JudgeRequest>::Serialize(*frame, &buffer, &own).ok());
-  EXPECT_LT(allocated - before, kFew);
+  EXPECT_LT(allocated - before, buffer.Length() + kFew);
   EXPECT_EQ(buffer.Length(), frame->ByteSizeLong());
 }
 
