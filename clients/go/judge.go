@@ -117,6 +117,7 @@ type JudgeStream struct {
 type outgoing struct {
 	block *kinegatev1.EventBlock
 	bytes int64
+	sent  time.Time // for the first time; zero before
 }
 
 // errSelectionChanged reports a server that judges with something else although the caller does not follow.
@@ -171,7 +172,7 @@ func (s *JudgeStream) Send(block *kinegatev1.EventBlock) error {
 	}
 	block.Sequence = s.next
 	s.next++
-	s.queue = append(s.queue, outgoing{block, int64(proto.Size(block))})
+	s.queue = append(s.queue, outgoing{block: block, bytes: int64(proto.Size(block))})
 	s.changed.Broadcast()
 	return nil
 }

@@ -140,7 +140,7 @@ func (s *JudgeStream) serve(l *link) error {
 	var all sync.WaitGroup
 	all.Go(func() { s.feed(l) })
 	all.Go(func() { s.guard(l) })
-	all.Go(l.beat)
+	all.Go(func() { s.beat(l) })
 	err := s.receive(l)
 	if cause := context.Cause(l.ctx); cause != nil && s.ctx.Err() == nil {
 		err = cause
@@ -216,7 +216,10 @@ func (s *JudgeStream) nextBlock(l *link) (block *kinegatev1.EventBlock, end bool
 		case s.closed && s.sent == len(s.queue):
 			return nil, true
 		case s.sent < len(s.queue) && !l.draining.Load() && l.affords(s.queue[s.sent].bytes):
-			next := s.queue[s.sent]
+			next := &s.queue[s.sent]
+			if next.sent.IsZero() {
+				next.sent = time.Now()
+			}
 			s.sent++
 			if l.blocks == 0 {
 				l.progress.Store(l.now())
@@ -239,7 +242,7 @@ func (l *link) affords(bytes int64) bool {
 const looks = 20
 
 // beat sends a heartbeat after a second without a frame.
-func (l *link) beat() {
+func (s *JudgeStream) beat(l *link) {
 	ticker := time.NewTicker(heartbeatInterval / looks)
 	defer ticker.Stop()
 	for {
@@ -254,9 +257,21 @@ func (l *link) beat() {
 		answered := l.answered.Load()
 		// A failure shows at the receiver.
 		_ = l.send(&kinegatev1.JudgeRequest{Frame: &kinegatev1.JudgeRequest_Heartbeat{
-			Heartbeat: &kinegatev1.Heartbeat{ReceivedSequence: answered, AnsweredSequence: answered},
+			Heartbeat: &kinegatev1.Heartbeat{
+				ReceivedSequence: answered, AnsweredSequence: answered, OldestPendingS: s.oldest().Seconds(),
+			},
 		}})
 	}
+}
+
+// oldest is the time since the oldest block without a verdict was sent first; 0 where there is none.
+func (s *JudgeStream) oldest() time.Duration {
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	if len(s.queue) == 0 || s.queue[0].sent.IsZero() {
+		return 0
+	}
+	return time.Since(s.queue[0].sent)
 }
 
 // guard cuts a link whose server is silent or stuck. It never sends, which could block.
