@@ -94,6 +94,9 @@ func (g *Generator) open(p *plan) *fault.Error {
 func (g *Generator) prepare(p *plan, stop func() bool) bool {
 	low, high := g.source.limits()
 	low = max(low, p.threshold)
+	if !p.root.sharp {
+		p.root.roof = newRoof(p.root, p.nodes, high, stop)
+	}
 	p.rate = p.channel.Energy.Curve
 	if p.channel.Energy.Kind == LawRate {
 		p.rate = lawCurve(p.channel.Angle.Law, leptonOf(p.channel, g.config.Initial), low, high, stop)
@@ -159,12 +162,12 @@ func (s *scan) jointCeiling(p *plan, low, high float64) float64 {
 	top := 0.0
 	for i, m := range s.m {
 		if m > low {
-			top = max(top, p.root.ceiling(p.nodes, m)/s.flux[i])
+			top = max(top, p.root.ceiling(m)/s.flux[i])
 		}
 	}
 	// The ends, which a sample misses: the flux factor of a beam is smooth, so
 	// that of the nearest sampled state serves for the weight at the end.
-	return 1.02 * max(top, p.root.ceiling(p.nodes, high)/s.best)
+	return 1.02 * max(top, p.root.ceiling(high)/s.best)
 }
 
 // Channels is the number of channels.

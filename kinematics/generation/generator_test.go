@@ -242,7 +242,9 @@ func BenchmarkMixture(b *testing.B) {
 // TestAttemptsAreShared holds that the loops of one event share its attempts: decays that
 // are never accepted, one inside the other, take no more than one loop.
 func TestAttemptsAreShared(t *testing.T) {
-	never := DalitzPolynomial{Terms: []DalitzTerm{{Coefficient: 1}, {Coefficient: -1 - 1e-12, PowerX: 0, PowerY: 0}, {Coefficient: 1e-9, PowerX: 8}}}
+	// Positive within a ten-millionth of the plot around X = 0, Y = 0.2, a point of the grid of its bound.
+	const sharp = 1e7
+	never := DalitzPolynomial{Terms: []DalitzTerm{{1 - 0.04*sharp, 0, 0}, {-sharp, 2, 0}, {-sharp, 0, 2}, {0.4 * sharp, 0, 1}}}
 	broad := Product{
 		Number: 113, MassGeV: 0.775, WidthGeV: 0.15,
 		Decay: &Decay{Products: []Product{{Number: 211, MassGeV: 0.1396}, {Number: -211, MassGeV: 0.1396}}},

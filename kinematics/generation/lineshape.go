@@ -155,9 +155,13 @@ func (r *resonance) ceiling(high float64) float64 {
 	if !(high > r.low) {
 		return 0
 	}
+	return r.top(high) * (r.span(high) / math.Pi)
+}
+
+// top bounds shapeRatio up to a highest mass above low.
+func (r *resonance) top(high float64) float64 {
 	x := math.Sqrt(math.Sqrt((min(high, r.high) - r.low) / (r.high - r.low)))
-	cell := min(int(x*shapeGrid)+1, shapeGrid)
-	return r.tops[cell] * (r.span(high) / math.Pi)
+	return r.tops[min(int(x*shapeGrid)+1, shapeGrid)]
 }
 
 // angle maps a mass so that a Breit-Wigner of constant width in m^2 is flat.

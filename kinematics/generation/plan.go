@@ -15,6 +15,14 @@ type node struct {
 	group     *group // nil for a final particle
 }
 
+// high is the highest mass.
+func (n *node) high() float64 {
+	if n.resonance != nil {
+		return n.resonance.high
+	}
+	return n.mass
+}
+
 // group is the particles that one reaction or decay makes.
 type group struct {
 	// rows are the particles' places in the tree, in the order of the splits:
@@ -26,8 +34,10 @@ type group struct {
 	sharp bool
 	// floors is the sum of the lowest masses.
 	floors float64
-	// lowest is the phase space of the lowest masses, for ceilings.
+	// lowest is the phase space of the lowest masses, for ceilings; roof is that of a
+	// group with broad particles.
 	lowest PhaseSpace
+	roof   *roof
 	// of a decay: the factor of the momentum of two daughters, and their shapes
 	factor   centrifugal
 	density  shaper
@@ -104,6 +114,9 @@ func (p *plan) grow(products []Product, parent, last int, stop func() bool) *gro
 				n.floor = n.resonance.low
 				g.sharp = false
 			}
+			if !inner.sharp {
+				inner.roof = newRoof(inner, p.nodes, n.high(), stop)
+			}
 		}
 		g.floors += p.nodes[row].floor
 	}
@@ -133,13 +146,19 @@ func (g *group) prepare(nodes []node) {
 	g.lowest.setMasses(masses)
 }
 
-// ceiling is an upper bound of the weight that draw returns at a total mass m > floors:
-// all its factors are largest for the lowest masses or, of line shapes, bounded.
-func (g *group) ceiling(nodes []node, m float64) float64 {
-	w := g.lowest.ceiling(m)
+// ceiling is an upper bound of the weight that draw returns at a total mass m > floors.
+func (g *group) ceiling(m float64) float64 {
 	if g.sharp {
-		return w
+		return g.lowest.ceiling(m)
 	}
+	return g.roof.at(m - g.floors)
+}
+
+// looseCeiling bounds the weight of a group with broad particles by its factors, each
+// for all the excess energy: phase space and the factor of the momentum are largest
+// for the lowest masses.
+func (g *group) looseCeiling(nodes []node, m float64) float64 {
+	w := g.lowest.ceiling(m)
 	for _, row := range g.rows {
 		if r := nodes[row].resonance; r != nil {
 			w *= r.ceiling(m - (g.floors - nodes[row].floor))

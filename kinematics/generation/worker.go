@@ -204,7 +204,7 @@ func (w *Worker) produce() float64 {
 		w.drawProducts() // two sharp bodies: always the same weight
 		return 1
 	}
-	ceiling := w.plan.root.ceiling(w.plan.nodes, w.state.m)
+	ceiling := w.plan.root.ceiling(w.state.m)
 	return w.unweighted(func() float64 { return w.drawProducts() / ceiling })
 }
 
@@ -248,7 +248,7 @@ func (w *Worker) fraction() float64 {
 		if !w.energy() {
 			return 0
 		}
-		return w.drawProducts() / w.plan.root.ceiling(w.plan.nodes, w.state.m)
+		return w.drawProducts() / w.plan.root.ceiling(w.state.m)
 	}
 	w.state = w.generator.source.draw(w.stream)
 	if !(w.state.m > w.plan.threshold) {
@@ -382,7 +382,7 @@ func (w *Worker) redraw(g *group, ps *PhaseSpace, m float64) bool {
 	if g.sharp && len(g.rows) == 2 {
 		return ps.drawMasses(w.stream, m) > 0
 	}
-	ceiling := g.ceiling(w.plan.nodes, m)
+	ceiling := g.ceiling(m)
 	for w.again() {
 		weight := g.draw(w.stream, w.plan.nodes, m, w.masses, ps)
 		if w.stream.Uniform()*ceiling < weight {
