@@ -1,12 +1,15 @@
 package main
 
 import (
+	"context"
 	"errors"
+	"net"
 	"os"
 	"os/exec"
 	"path/filepath"
 	"strconv"
 	"strings"
+	"sync"
 	"sync/atomic"
 	"syscall"
 	"testing"
@@ -14,6 +17,7 @@ import (
 
 	"google.golang.org/grpc"
 	"google.golang.org/grpc/credentials/insecure"
+	"google.golang.org/grpc/status"
 
 	kinegate "example.org/kinegate/clients/go"
 	"example.org/kinegate/clients/go/history"
@@ -224,9 +228,10 @@ func resident(t *testing.T, pid int, key string) int64 {
 }
 
 // TestMemoryWithEveryStreamStalled fills the credit pool with streams whose callers take
-// nothing. One more is refused; the memory stays within the pool, the flow control of
-// the open streams and 16 MiB; the stalled connections are gone within 6 s; and a
-// server told to leave meanwhile leaves in time.
+// nothing. One more is refused as overload; the memory stays within the pool, the flow
+// control of the open streams and 16 MiB; the stalled connections are gone within 6 s, and
+// with them what they held, so that as many may come again; and a server told to leave while
+// these stall leaves in time.
 func TestMemoryWithEveryStreamStalled(t *testing.T) {
 	if raceDetector {
 		t.Skip("the race detector's own memory passes the bound; make test measures without it")
@@ -242,33 +247,14 @@ func TestMemoryWithEveryStreamStalled(t *testing.T) {
 	}
 	pid := s.process.Process.Pid
 	before := resident(t, pid, "VmRSS")
-	streams, sent := 0, make(chan int, 64)
 	var blocks []*kinegatev1.EventBlock
 	for i := range 8 {
 		b := history.Photons(4000*i, 4000)
 		b.Sequence = int64(i)
 		blocks = append(blocks, b)
 	}
-	for ; ; streams++ {
-		stream, err := stalledStream(t, s.socket("gate"))
-		if err != nil {
-			t.Logf("stream %d: %v", streams, err)
-			break
-		}
-		go func() {
-			n := 0
-			for _, b := range blocks {
-				if stream.Send(&kinegatev1.JudgeRequest{Frame: &kinegatev1.JudgeRequest_Block{Block: b}}) != nil {
-					break
-				}
-				n++
-			}
-			sent <- n
-		}()
-	}
-	if streams < 8 {
-		t.Fatalf("only %d streams", streams)
-	}
+	gone := make(chan time.Duration, 2*maxStreams)
+	streams := stallAll(t, s.socket("gate"), blocks, gone)
 	time.Sleep(3 * time.Second)
 	bound := int64(pool + streams*window + slack)
 	if grown := resident(t, pid, "VmHWM") - before; grown > bound {
@@ -276,6 +262,20 @@ func TestMemoryWithEveryStreamStalled(t *testing.T) {
 	} else {
 		t.Logf("%d streams: memory grew by %d KiB, the bound is %d", streams, grown>>10, bound>>10)
 	}
+	for range streams {
+		select {
+		case took := <-gone:
+			if took > 6*time.Second {
+				t.Errorf("a stalled connection was gone after %v", took)
+			}
+		case <-time.After(10 * time.Second):
+			t.Fatal("a stalled connection stays")
+		}
+	}
+	if again := stallAll(t, s.socket("gate"), blocks, gone); again != streams {
+		t.Errorf("%d streams at first, then %d", streams, again)
+	}
+	time.Sleep(3 * time.Second) // they stall
 	begun := time.Now()
 	if err := s.process.Process.Signal(syscall.SIGTERM); err != nil {
 		t.Fatal(err)
@@ -286,27 +286,90 @@ func TestMemoryWithEveryStreamStalled(t *testing.T) {
 	s.start() // for the clean-up
 }
 
+// maxStreams is more than a credit pool has room for.
+const maxStreams = 64
+
+// stallAll opens stalled streams until one is refused, sends blocks on each and returns how
+// many there are. Each tells how long its connection stayed.
+func stallAll(t *testing.T, where string, blocks []*kinegatev1.EventBlock, gone chan<- time.Duration) (streams int) {
+	t.Helper()
+	const least = 8
+	for ; streams < maxStreams; streams++ {
+		stream, closed, err := stalledStream(t, where)
+		if err != nil {
+			if reason := reasonOf(status.Convert(err)); reason != "SERVER_OVERLOADED" {
+				t.Fatalf("stream %d: %q: %v", streams, reason, err)
+			}
+			break
+		}
+		begun := time.Now()
+		go func() {
+			<-closed
+			gone <- time.Since(begun)
+		}()
+		go func() {
+			for _, b := range blocks {
+				if stream.Send(&kinegatev1.JudgeRequest{Frame: &kinegatev1.JudgeRequest_Block{Block: b}}) != nil {
+					return
+				}
+			}
+		}()
+	}
+	if streams < least || streams == maxStreams {
+		t.Fatalf("%d streams", streams)
+	}
+	return streams
+}
+
 // stalledStream opens a stream on a connection of its own with narrow windows, and
-// nobody will read it.
-func stalledStream(t *testing.T, where string) (kinegatev1.SelectionService_JudgeClient, error) {
+// nobody will read it. Closed receives the end of the connection.
+func stalledStream(t *testing.T, where string) (stream kinegatev1.SelectionService_JudgeClient, closed <-chan struct{}, err error) {
 	t.Helper()
 	const window = 64 << 10
-	conn, err := grpc.NewClient(where, grpc.WithTransportCredentials(insecure.NewCredentials()),
-		grpc.WithStaticStreamWindowSize(window), grpc.WithStaticConnWindowSize(window))
+	gone := make(chan struct{})
+	conn, err := grpc.NewClient("passthrough:gate", grpc.WithTransportCredentials(insecure.NewCredentials()),
+		grpc.WithStaticStreamWindowSize(window), grpc.WithStaticConnWindowSize(window),
+		grpc.WithContextDialer(func(ctx context.Context, _ string) (net.Conn, error) {
+			network, address := "tcp", where
+			if path, unix := strings.CutPrefix(where, "unix:"); unix {
+				network, address = "unix", path
+			}
+			c, err := new(net.Dialer).DialContext(ctx, network, address)
+			if err != nil {
+				return nil, err
+			}
+			return &watched{Conn: c, gone: gone}, nil
+		}))
 	if err != nil {
 		t.Fatal(err)
 	}
 	t.Cleanup(func() { _ = conn.Close() })
-	stream, err := kinegatev1.NewSelectionServiceClient(conn).Judge(t.Context())
+	stream, err = kinegatev1.NewSelectionServiceClient(conn).Judge(t.Context())
 	if err != nil {
-		return nil, err
+		return nil, nil, err
 	}
 	if err := stream.Send(&kinegatev1.JudgeRequest{Frame: &kinegatev1.JudgeRequest_Open{Open: history.AllEntries()}}); err != nil {
-		return nil, err
+		return nil, nil, err
 	}
 	response, err := stream.Recv()
 	if err == nil && response.GetOpened() == nil {
 		err = errors.New("no opening")
 	}
-	return stream, err
+	return stream, gone, err
+}
+
+// watched is a connection that tells once when the peer has closed it.
+type watched struct {
+	net.Conn
+
+	once sync.Once
+	gone chan struct{}
+}
+
+func (w *watched) Read(p []byte) (int, error) {
+	n, err := w.Conn.Read(p)
+	if err != nil {
+		w.once.Do(func() { close(w.gone) })
+	}
+	return n, err
 }

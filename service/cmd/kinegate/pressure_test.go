@@ -121,7 +121,7 @@ func TestMemoryOfGroup(t *testing.T) {
 	})
 	stalled := 0
 	for ; stalled < 16; stalled++ {
-		stream, err := stalledStream(t, where["gate"])
+		stream, _, err := stalledStream(t, where["gate"])
 		if err != nil {
 			break
 		}
