@@ -21,17 +21,18 @@ import (
 // are several.
 func nestedFile(names ...string) []byte {
 	maxima := map[string]float64{"near": 0.16, "wide": 9}
-	text := "name: pairs\nhypotheses:\n"
+	var text strings.Builder
+	text.WriteString("name: pairs\nhypotheses:\n")
 	for _, name := range names {
-		text += "  - name: " + name + "\n    reaction: \"pi0 -> gamma gamma\"\n    extra_objects: {any: {}}\n" +
+		text.WriteString("  - name: " + name + "\n    reaction: \"pi0 -> gamma gamma\"\n    extra_objects: {any: {}}\n" +
 			"    ranking: {closest_masses: {masses: [{products: [\"gamma[0]\", \"gamma[1]\"], mass_gev: 0.135}]}}\n" +
 			"    condition: {window: {invariant_mass: {products: [\"gamma[0]\", \"gamma[1]\"], max_gev: " +
-			strconv.FormatFloat(maxima[name], 'g', -1, 64) + "}}}\n"
+			strconv.FormatFloat(maxima[name], 'g', -1, 64) + "}}}\n")
 	}
 	if len(names) > 1 {
-		text += "groups: [{name: both, hypotheses: [" + strings.Join(names, ", ") + "]}]\n"
+		text.WriteString("groups: [{name: both, hypotheses: [" + strings.Join(names, ", ") + "]}]\n")
 	}
-	return []byte(text)
+	return []byte(text.String())
 }
 
 // TestFollowersLearnTheOutline: verdicts of a stream that follows go by the outline of the

@@ -37,7 +37,7 @@ TEST(JudgeStream, FuturesHoldVerdictsAndTheOpeningIsKnown) {
   const Sample sample(10);
   JudgeStream stream(Gate(server.address()), OpenWith(PairSelection()));
   EXPECT_EQ(stream.opened().selection().selection_digest().size(), 64U);
-  EXPECT_EQ(stream.opened().hypotheses(0).observables(0), "mass");
+  EXPECT_EQ(stream.opened().selection().hypotheses(0).observables(0), "mass");
   auto first = stream.Push(MakeBlock(sample.arrays(), 0, 6));
   auto second = stream.Push(MakeBlock(sample.arrays(), 6, 4));
   EXPECT_EQ(second.get().sequence(), 1);
