@@ -94,7 +94,7 @@ func (s *selectionService) open(stream judgeServer, open *kinegatev1.JudgeOpen) 
 	if err := room(judging.largestReply()); err != nil {
 		return nil, err
 	}
-	judging.room = func(largestReply int64) bool { return room(largestReply) == nil }
+	judging.room = room
 	j := newJudgeStream(s, stream, judging, open, held.giveBack)
 	if err := stream.SendHeader(metadata.MD{}); err != nil {
 		held.giveBack()

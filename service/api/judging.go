@@ -22,8 +22,10 @@ type judging struct {
 	// follow names the selection whose newest version takes over; empty for none.
 	follow string
 	// room books room for larger replies; a judging that follows has it.
-	room func(largestReply int64) bool
-	crew crew
+	room func(largestReply int64) error
+	// passedOver is the digest of the version that it last said it cannot take.
+	passedOver string
+	crew       crew
 }
 
 // newJudging finds and compiles the selection of a caller, whose blocks keep the
@@ -57,12 +59,20 @@ func (s *selectionService) newJudging(
 		f.need("selection", "empty", "given or named")
 		return nil, f.faults
 	}
-	if largest, limit := c.largestReply(limits, j.detail), limits.messageBytes; largest > limit {
-		return nil, OverLimit(ReplyTooLarge, "the largest possible reply in bytes", largest, limit,
-			"promise smaller blocks, ask for fewer entries or record fewer observables")
+	if err := j.fits(c); err != nil {
+		return nil, err
 	}
 	j.use(c)
 	return j, nil
+}
+
+// fits refuses a selection whose replies could pass the limit of the transport.
+func (j *judging) fits(c *compiledSelection) error {
+	if largest, limit := c.largestReply(j.limits, j.detail), j.limits.messageBytes; largest > limit {
+		return OverLimit(ReplyTooLarge, "the largest possible reply in bytes", largest, limit,
+			"promise smaller blocks, ask for fewer entries or record fewer observables")
+	}
+	return nil
 }
 
 // use makes a selection the one that judges.
@@ -116,7 +126,7 @@ func (j *judging) events(
 
 // catchUp takes a newer version of a followed selection at a block boundary. One
 // whose replies could pass the limit of the transport, or for which there is no room,
-// is left alone; the digest shows it.
+// is left alone: the digest shows it to the caller, and the observer hears of it once.
 func (j *judging) catchUp() {
 	if j.follow == "" {
 		return
@@ -125,11 +135,17 @@ func (j *judging) catchUp() {
 	if err != nil || newest.digest == j.compiled.digest {
 		return
 	}
-	largest := newest.largestReply(j.limits, j.detail)
-	if largest > j.limits.messageBytes || !j.room(largest) {
-		return
+	err = j.fits(newest)
+	if err == nil {
+		err = j.room(newest.largestReply(j.limits, j.detail))
 	}
-	j.use(newest)
+	switch {
+	case err == nil:
+		j.use(newest)
+	case newest.digest != j.passedOver:
+		j.passedOver = newest.digest
+		j.service.deps.Observer.VersionPassedOver(j.follow, newest.digest, Explain(err).Reason)
+	}
 }
 
 // convertBlock reads a block within the limits into the memory of w.

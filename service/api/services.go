@@ -75,6 +75,10 @@ type StreamObserver interface {
 	BlockAnswered(latency time.Duration)
 	// CreditHeld changes the sum of byte credits handed out by delta.
 	CreditHeld(delta int64)
+	// VersionPassedOver tells, once for each stream and version, that a stream which
+	// follows a selection keeps the one it has, and the reason against the newer one,
+	// whose digest is given.
+	VersionPassedOver(selection, digest string, reason Reason)
 }
 
 // Services are the rpc services of one server.
@@ -139,8 +143,9 @@ func (s *Services) register(r grpc.ServiceRegistrar, selections *selectionServic
 // silent is the observer that does nothing.
 type silent struct{}
 
-func (silent) StreamOpened()               {}
-func (silent) StreamClosed(string)         {}
-func (silent) EventsJudged(string, int)    {}
-func (silent) BlockAnswered(time.Duration) {}
-func (silent) CreditHeld(int64)            {}
+func (silent) StreamOpened()                            {}
+func (silent) StreamClosed(string)                      {}
+func (silent) EventsJudged(string, int)                 {}
+func (silent) BlockAnswered(time.Duration)              {}
+func (silent) CreditHeld(int64)                         {}
+func (silent) VersionPassedOver(string, string, Reason) {}

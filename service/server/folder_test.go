@@ -1,6 +1,7 @@
 package server
 
 import (
+	"fmt"
 	"os"
 	"path/filepath"
 	"slices"
@@ -112,6 +113,72 @@ func TestReloadMidStream(t *testing.T) {
 	}
 	if len(order) != 2 || !digests[order[0]] {
 		t.Errorf("digests %v", order)
+	}
+}
+
+// TestVersionPassedOver: a stream that follows keeps the version that it has where the newer one
+// could make replies that are too large, or for which no room is left, and says so once.
+func TestVersionPassedOver(t *testing.T) {
+	for _, c := range []struct {
+		reason   api.Reason
+		recorded int // observables of the newer version
+		room     Bytes
+	}{{api.ReplyTooLarge, 127, 64 * mebi}, {api.ServerOverloaded, 40, 3 * mebi}} {
+		t.Run(string(c.reason), func(t *testing.T) {
+			path := t.TempDir()
+			file := filepath.Join(path, "pairs.yaml")
+			writeFile(t, file, pairsFile("pairs", 0.16))
+			r := start(t, func(o *Options, _ *Deps) {
+				o.SelectionFolder, o.CreditPool = path, o.CreditLimit+c.room
+			})
+			open := namedPairs(true)
+			open.Entries = kinegatev1.EntryDetail_ENTRY_DETAIL_ACCEPTED
+			stream, err := r.client(t).Judge(t.Context(), open, kinegate.JudgeOptions{})
+			if err != nil {
+				t.Fatal(err)
+			}
+			defer stream.Close()
+			const perBlock = 10
+			next := 0
+			judged := func() string {
+				if err := stream.Send(history.Photons(next, perBlock)); err != nil {
+					t.Fatal(err)
+				}
+				next += perBlock
+				v, err := stream.Recv()
+				if err != nil {
+					t.Fatal(err)
+				}
+				return v.GetSelectionDigest()
+			}
+			first := judged()
+			for version := range 2 {
+				var larger strings.Builder
+				larger.Write(pairsFile("pairs", 0.17+float64(version)/100))
+				larger.WriteString("    record:\n")
+				for i := range c.recorded {
+					fmt.Fprintf(&larger, "      - {name: M%d, invariant_mass: {products: [\"gamma[0]\", \"gamma[1]\"]}}\n", i)
+				}
+				put(t, file, []byte(larger.String()))
+				settle(r)
+				for range 3 {
+					if got := judged(); got != first {
+						t.Errorf("judged by %s", got)
+					}
+				}
+				if got := r.metric(t, "kinegate_judge_versions_passed_over_total", string(c.reason)); got != float64(version+1) {
+					t.Errorf("counted %v times after version %d", got, version)
+				}
+			}
+			if n := strings.Count(r.log.String(), "cannot take the newer version"); n != 2 {
+				t.Errorf("%d lines:\n%s", n, r.log)
+			}
+			put(t, file, pairsFile("pairs", 0.2))
+			settle(r)
+			if judged() == first {
+				t.Error("a version that fits is not taken")
+			}
+		})
 	}
 }
 

@@ -40,9 +40,23 @@ func newServices(o *Options, deps *Deps, metrics *telemetry.Metrics, log func() 
 		StallLimit: o.StallLimit,
 		Drain:      api.Drain{Started: leaving, Grace: o.DrainTime},
 		Connection: o.connectionOf,
-		Observer:   metrics,
+		Observer:   streamObserver{metrics, log},
 	})
 	return services, watched, err
+}
+
+// streamObserver counts what happens on judge streams, and logs what somebody may have to mend.
+type streamObserver struct {
+	*telemetry.Metrics
+
+	log func() *zerolog.Logger
+}
+
+// VersionPassedOver counts and logs that a stream keeps the version that it has.
+func (o streamObserver) VersionPassedOver(selection, digest string, reason api.Reason) {
+	o.Metrics.VersionPassedOver(string(reason))
+	o.log().Warn().Str("reason", string(reason)).Str("selection", selection).Str("digest", digest).
+		Msg("a stream that follows its selection cannot take the newer version and keeps the one it has")
 }
 
 // loadTable lays particle files over the standard table.

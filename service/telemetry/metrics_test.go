@@ -45,6 +45,7 @@ func used(t *testing.T) (*Metrics, *prometheus.Registry) {
 	m.EventsJudged("accepted", 3)
 	m.BlockAnswered(time.Millisecond)
 	m.CreditHeld(4096)
+	m.VersionPassedOver("REPLY_TOO_LARGE")
 	return m, registry
 }
 

@@ -13,6 +13,7 @@ type streamMetrics struct {
 	events  *prometheus.CounterVec
 	latency prometheus.Histogram
 	credit  prometheus.Gauge
+	passed  *prometheus.CounterVec
 }
 
 func newStreamMetrics() streamMetrics {
@@ -40,11 +41,15 @@ func newStreamMetrics() streamMetrics {
 			Name: "kinegate_judge_credit_bytes",
 			Help: "Byte credit handed out to open judge streams.",
 		}),
+		passed: prometheus.NewCounterVec(prometheus.CounterOpts{
+			Name: "kinegate_judge_versions_passed_over_total",
+			Help: "New versions of a selection that a stream which follows it could not take, by reason.",
+		}, []string{"reason"}),
 	}
 }
 
 func (s streamMetrics) all() []prometheus.Collector {
-	return []prometheus.Collector{s.open, s.closed, s.events, s.latency, s.credit}
+	return []prometheus.Collector{s.open, s.closed, s.events, s.latency, s.credit, s.passed}
 }
 
 // StreamOpened counts an accepted opening.
@@ -68,3 +73,6 @@ func (m *Metrics) BlockAnswered(latency time.Duration) {
 
 // CreditHeld changes the sum of byte credits handed out by delta.
 func (m *Metrics) CreditHeld(delta int64) { m.streams.credit.Add(float64(delta)) }
+
+// VersionPassedOver counts a newer version that a stream could not take.
+func (m *Metrics) VersionPassedOver(reason string) { m.streams.passed.WithLabelValues(reason).Inc() }
