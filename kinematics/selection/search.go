@@ -154,7 +154,7 @@ func (w *Worker) place(k int) bool {
 			return false
 		}
 		object := choices.lowest()
-		if (free & above(object)).count() < slot.higher {
+		if slot.higher > 0 && (free&above(object)).count() < slot.higher {
 			break // the later slots that need a higher object would lack one
 		}
 		w.assigned[k] = uint8(object) //nolint:gosec // below maxObjects
