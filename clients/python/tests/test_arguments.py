@@ -56,9 +56,9 @@ MISTAKES: dict[str, tuple[Act, str, str]] = {
         "'x' is not an integer",
     ),
     "huge count": (
-        lambda c: c.open_channels("gamma p", max_bodies=2**40),
+        lambda c: c.open_channels("gamma p", max_bodies=2**70),
         "max_bodies",
-        str(2**40),
+        str(2**70),
     ),
     "one text for many": (
         lambda c: c.open_channels("gamma p", products="p"),
