@@ -118,14 +118,57 @@ func near(t *testing.T, what string, k, n int, p float64) {
 // of sin(theta) within a resolution; those of the energy are skewed by the
 // change of sigma within itself, sigma'(E), at most 1.4 % here.
 func TestPulls(t *testing.T) {
+	for name, values := range pullsBetween(t, hall(), 30, 120) {
+		t.Run(name, func(t *testing.T) {
+			checkNormal(t, values)
+		})
+	}
+}
+
+// Forward the azimuth's spread s/sin(theta) changes much within the resolution s of theta: its pull
+// has the square (sin theta' / sin theta)^2 z^2 with the measured theta', of the mean 1 + s^2/theta^2
+// to s^4/theta^4 and theta^2. Over even angles from a to b that is 1 + s^2/(a b). The other pulls
+// are those of other angles.
+func TestForwardPulls(t *testing.T) {
+	const low, high = 3, 12
 	c := hall()
+	c.Calorimeter.Theta.MinRad, c.Tracker.Theta.MinRad = 0.1*degree, 0.1*degree
+	for name, values := range pullsBetween(t, c, low, high) {
+		t.Run(name, func(t *testing.T) {
+			sigma := map[string]float64{"photon phi": c.Calorimeter.ThetaSigmaRad, "track phi": c.Tracker.AngleSigmaRad}[name]
+			if sigma == 0 {
+				checkNormal(t, values)
+				return
+			}
+			want := 1 + float64(sigma*sigma/(low*degree*high*degree))
+			sum, square := 0.0, 0.0
+			for _, v := range values {
+				sum += v
+				square += float64(v * v)
+			}
+			n := float64(len(values))
+			if m := sum / n; math.Abs(m) > 5*math.Sqrt(want/n) {
+				t.Errorf("mean %.4f", m)
+			}
+			// Five standard errors and the next order, at most (s/a)^4 of a tenth of the angles.
+			room := 5*math.Sqrt(2/n)*want + 0.1*math.Pow(sigma/(low*degree), 4)
+			if v := square / n; math.Abs(v-want) > room {
+				t.Errorf("variance %.4f, want %.4f to %.4f", v, want, room)
+			}
+		})
+	}
+}
+
+// pullsBetween are the pulls of photons and tracks between two polar angles in degrees.
+func pullsBetween(t *testing.T, c detector.Config, low, high float64) map[string][]float64 {
+	t.Helper()
 	c.Calorimeter.Efficiency, c.Tracker.Efficiency = 1, 1
 	c.Calorimeter.SplitOff, c.Calorimeter.Noise = nil, nil
 	const n = 60_000
 	truth := truthOf(n, func(i int) []particle {
 		s := random.New(1, random.Generation, int64(i))
 		direction := func(size float64) momentum.Three {
-			return at(size, (30+90*s.Uniform())*degree, 2*math.Pi*s.Uniform()-math.Pi)
+			return at(size, (low+float64((high-low)*s.Uniform()))*degree, 2*math.Pi*s.Uniform()-math.Pi)
 		}
 		return []particle{
 			{number: 22, p: direction(0.2 + s.Uniform())},
@@ -150,11 +193,7 @@ func TestPulls(t *testing.T) {
 			pulls[kind+"phi"] = append(pulls[kind+"phi"], math.Remainder(x[2][row]-p.Phi(), 2*math.Pi)/math.Sqrt(cov[5]))
 		}
 	}
-	for name, values := range pulls {
-		t.Run(name, func(t *testing.T) {
-			checkNormal(t, values)
-		})
-	}
+	return pulls
 }
 
 // checkNormal tests mean, variance and tails of the whole, and the mean and

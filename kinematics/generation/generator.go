@@ -83,7 +83,7 @@ func (g *Generator) open(p *plan) *fault.Error {
 	if !(high > p.root.floors) {
 		return fault.New(fault.BelowThreshold, "", "", "").In("generation.New").Because(
 			"the channel is closed: sqrt(s) reaches " + sevenDigits(high) + " GeV, the lightest final state needs " +
-				sevenDigits(p.root.floors) + " GeV, " + sevenDigits(p.root.floors-high) + " GeV more")
+				sevenDigits(p.root.floors) + " GeV, " + sevenDigits(p.root.floors-high) + " GeV more" + limited(p.channel.Products))
 	}
 	p.threshold = p.root.floors
 	return nil

@@ -3,6 +3,7 @@ package generation
 import (
 	"errors"
 	"math"
+	"strings"
 	"testing"
 	"time"
 
@@ -193,6 +194,16 @@ func TestClosedAndEmpty(t *testing.T) {
 	_, err := New(c)
 	if !errors.Is(err, fault.BelowThreshold) {
 		t.Errorf("a closed channel gives %v", err)
+	}
+	if err == nil || strings.Contains(err.Error(), "min_gev") {
+		t.Errorf("a limit that nobody gave: %v", err)
+	}
+	// Of a channel that the caller's own limit closes the fault names the limit.
+	limit := Product{Number: 113, MassGeV: 0.775, WidthGeV: 0.15, Shape: LineShape{LowGeV: 5}, Decay: &Decay{Products: []Product{pion(1), pion(-1)}}}
+	limit.Shape.HighGeV = 6
+	c.Channels = []Channel{{Name: "p rho0", Products: []Product{proton(), limit}}}
+	if _, err := New(c); !errors.Is(err, fault.BelowThreshold) || !strings.Contains(err.Error(), "min_gev = 5 of the line shape of particle 113") {
+		t.Errorf("a channel closed by a limit gives %v", err)
 	}
 	g := generator(t, hall())
 	truth, stats := fill(t, g, 0, 0)

@@ -59,6 +59,26 @@ func (p *Product) lightest() float64 {
 // broad reports whether the mass is drawn.
 func (p *Product) broad() bool { return p.WidthGeV > 0 && p.Decay != nil }
 
+// limited says of which products the given limit of the mass, not the lightest final
+// state, is the lowest mass; for a channel that is closed.
+func limited(products []Product) string {
+	text := ""
+	for i := range products {
+		p := &products[i]
+		if !p.broad() {
+			continue
+		}
+		free := *p
+		free.Shape.LowGeV = 0
+		if low := p.lightest(); low > free.lightest() {
+			text += "; min_gev = " + sevenDigits(low) + " of the line shape of particle " + strconv.FormatInt(p.Number, 10) +
+				" counts in it, without it that particle would start at " + sevenDigits(free.lightest()) + " GeV"
+		}
+		text += limited(p.Decay.Products)
+	}
+	return text
+}
+
 // maxDepth bounds the nesting of decays.
 const maxDepth = 16
 

@@ -35,6 +35,10 @@ func explain(err error) (text string, code int) {
 	switch s.Code() { //nolint:exhaustive // all other codes are failures of the work
 	case codes.InvalidArgument, codes.NotFound, codes.FailedPrecondition, codes.OutOfRange:
 		return describeStatus(s), exitUsage
+	case codes.Unimplemented:
+		if reasonOf(s) == string(api.Unsupported) { // a question that nothing answers, not a server that is too old
+			return describeStatus(s), exitUsage
+		}
 	case codes.Unavailable, codes.DeadlineExceeded:
 		if reasonOf(s) == "" { // no server of ours has answered
 			return "no server answers in time: " + s.Message() + hint(s), exitFailed

@@ -24,8 +24,9 @@ func generateCommand(p program) *cobra.Command {
 		Short: "Make simulated events, decayed and measured, into a table or a file",
 		Long: "generate makes events of a reaction, or of a mixture of several with equal shares, and\n" +
 			"prints the first ones and a summary. Event i of a seed is the same event whatever slice it\n" +
-			"is made in. With --detector the events are measured too. Files: .csv and .kgb, which\n" +
-			"kinegate judge reads, and .parquet (one row an event). A .kgb file holds event blocks, each\n" +
+			"is made in. With --detector the events are measured too, and the table shows what is seen\n" +
+			"below the true particles. Files: .csv and .kgb, which kinegate judge reads, hold what is\n" +
+			"seen and no truth, .parquet (one row an event) both. A .kgb file holds event blocks, each\n" +
 			"behind its length, with covariances and vertices, for which .csv has no columns. Without a\n" +
 			"detector a file holds the true particles that would reach one. --request takes the full\n" +
 			"form: shares, bounds, energy and angular shapes, spectra, targets, decays. Beside it only\n" +

@@ -42,8 +42,9 @@ type simulated struct {
 	beam    float64 // energy of the particle that interacted; 0 where there is no beam
 	// particles are all of the event, depth first.
 	particles []trueParticle
-	// seen is the measurement; nil without a detector.
-	seen *kinegate.Measured
+	// seen is the measurement, in coordinates; nil without a detector.
+	seen        *kinegate.Measured
+	coordinates kinegate.Coordinates
 }
 
 // trueParticle is one particle of an event.
@@ -160,8 +161,9 @@ func readGenerated(block *kinegatev1.GeneratedBlock) ([]simulated, error) {
 		return nil, errors.Join(errors.New("the server sent columns that do not fit"), failed)
 	}
 	var measured []kinegate.Measured
+	var coordinates kinegate.Coordinates
 	if block.GetEvents() != nil {
-		if _, measured, err = kinegate.ReadEvents(block.GetEvents()); err != nil {
+		if coordinates, measured, err = kinegate.ReadEvents(block.GetEvents()); err != nil {
 			return nil, err
 		}
 	}
@@ -177,7 +179,7 @@ func readGenerated(block *kinegatev1.GeneratedBlock) ([]simulated, error) {
 			})
 		}
 		if i < len(measured) {
-			e.seen = &measured[i]
+			e.seen, e.coordinates = &measured[i], coordinates
 		}
 		events[i] = e
 	}
@@ -250,7 +252,7 @@ func (g *generated) givenUp() error {
 		lost, g.summary.GetEventCount())
 }
 
-// table prints the particles of the first events.
+// table prints the particles of the first events and what the detector saw of them.
 func (g *generated) table() error {
 	t := text.NewTable(">event", "particle", ">energy", ">momentum", ">theta", ">phi", ">mass")
 	for _, e := range g.shown {
@@ -268,9 +270,32 @@ func (g *generated) table() error {
 			}
 			t.Row(id, name, gevs(p.energy), gevs(size), degrees(theta), degrees(phi), gevs(p.mass))
 		}
+		if e.seen == nil || e.coordinates != kinegate.MomentumAngles {
+			continue // a detector measures in these coordinates
+		}
+		for i := range e.seen.Objects {
+			t.Row(seenRow(&e.seen.Objects[i])...)
+		}
 	}
 	if t.Rows() == 0 {
 		return nil
 	}
 	return t.Write(g.out)
+}
+
+// seenRow is a measured object: its mass and, but for photons, its energy are no measurement, and
+// without a momentum there is the direction alone.
+func seenRow(o *kinegate.Object) []string {
+	class := strings.ToLower(strings.TrimPrefix(o.Class.String(), "OBJECT_CLASS_"))
+	value := func(k int, show func(float64) string) string {
+		if o.Measured != 0 && o.Measured>>k&1 == 0 {
+			return "-"
+		}
+		return show(o.Values[k])
+	}
+	size, energy := value(0, gevs), "-"
+	if o.Class == kinegatev1.ObjectClass_OBJECT_CLASS_PHOTON {
+		energy = size
+	}
+	return []string{"", "seen: " + class, energy, size, value(1, degrees), value(2, degrees), "-"}
 }
