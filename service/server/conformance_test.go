@@ -74,7 +74,8 @@ func unpin(members any) {
 	case map[string]any:
 		for name, value := range x {
 			switch name {
-			case "selection_digest", "table_version", "largest_reply_byte_count":
+			case "selection_digest", "generation_digest", "request_digest", "digests", "table_version", "table_digest",
+				"numerics_version", "version", "largest_reply_byte_count":
 				delete(x, name)
 			}
 			unpin(value)

@@ -4,6 +4,7 @@
 #include <grpcpp/create_channel.h>
 #include <grpcpp/impl/client_unary_call.h>
 #include <grpcpp/support/byte_buffer.h>
+#include <grpcpp/support/sync_stream.h>
 #include <gtest/gtest.h>
 #include <signal.h>
 
@@ -19,6 +20,8 @@
 #include "kinegate/error.h"
 #include "kinegate/judge_stream.h"
 #include "kinegate/v1/decay.pb.h"
+#include "kinegate/v1/generation.pb.h"
+#include "kinegate/v1/info.pb.h"
 #include "kinegate/v1/particle.pb.h"
 #include "kinegate/v1/photon.pb.h"
 #include "process.h"
@@ -32,12 +35,15 @@ const char* const kCodes[] = {
     "ABORTED",   "OUT_OF_RANGE",   "UNIMPLEMENTED",     "INTERNAL",           "UNAVAILABLE",
     "DATA_LOSS", "UNAUTHENTICATED"};
 
-// Invoke makes the call of a case, with messages made from their descriptors.
+// Invoke makes the call of a case, with messages made from their descriptors. The reply of a stream
+// is the list of its messages.
 grpc::Status Invoke(const std::shared_ptr<grpc::Channel>& channel, const Json& call, Json* reply) {
   // Naming a message of each file links its services in.
   v1::DescribeDecayRequest::descriptor();
   v1::GetParticleRequest::descriptor();
   v1::DescribePhotonProcessRequest::descriptor();
+  v1::GenerateEventsRequest::descriptor();
+  v1::GetInfoRequest::descriptor();
   const std::string name = "kinegate.v1." + Member(call, "method").string_value();
   const auto* method = google::protobuf::DescriptorPool::generated_pool()->FindMethodByName(name);
   if (method == nullptr) throw std::runtime_error("there is no method " + name);
@@ -48,17 +54,28 @@ grpc::Status Invoke(const std::shared_ptr<grpc::Channel>& channel, const Json& c
   grpc::ClientContext context;
   context.set_deadline(std::chrono::system_clock::now() + std::chrono::seconds(10));
   const std::string path = "/" + method->service()->full_name() + "/" + method->name();
-  const grpc::internal::RpcMethod rpc(path.c_str(), grpc::internal::RpcMethod::NORMAL_RPC, channel);
   const grpc::Slice slice(in->SerializeAsString());
   const grpc::ByteBuffer request(&slice, 1);
   grpc::ByteBuffer response;
+  const auto form = [&] {
+    grpc::Slice whole;
+    EXPECT_TRUE(response.DumpToSingleSlice(&whole).ok());
+    EXPECT_TRUE(out->ParseFromArray(whole.begin(), static_cast<int>(whole.size())));
+    return Form(*out);
+  };
+  using grpc::internal::RpcMethod;
+  if (method->server_streaming()) {
+    const RpcMethod rpc(path.c_str(), RpcMethod::SERVER_STREAMING, channel);
+    const std::unique_ptr<grpc::ClientReader<grpc::ByteBuffer>> reader(
+        grpc::internal::ClientReaderFactory<grpc::ByteBuffer>::Create(channel.get(), rpc, &context, request));
+    auto* messages = reply->mutable_list_value();
+    while (reader->Read(&response)) *messages->add_values() = form();
+    return reader->Finish();
+  }
+  const RpcMethod rpc(path.c_str(), RpcMethod::NORMAL_RPC, channel);
   const grpc::Status status =
       grpc::internal::BlockingUnaryCall(channel.get(), rpc, &context, request, &response);
-  if (!status.ok()) return status;
-  grpc::Slice whole;
-  EXPECT_TRUE(response.DumpToSingleSlice(&whole).ok());
-  EXPECT_TRUE(out->ParseFromArray(whole.begin(), static_cast<int>(whole.size())));
-  *reply = Form(*out);
+  if (status.ok()) *reply = form();
   return status;
 }
 

@@ -6,6 +6,7 @@ import (
 	"encoding/json"
 	"errors"
 	"fmt"
+	"io"
 	"os"
 	"path/filepath"
 	"strconv"
@@ -29,7 +30,7 @@ type Call struct {
 	Method string `json:"method"`
 	// Request is the request in its JSON form.
 	Request json.RawMessage `json:"request"`
-	// Reply is what the reply must hold, in part.
+	// Reply is what the reply must hold, in part; that of a stream is the list of its messages.
 	Reply json.RawMessage `json:"reply,omitempty"`
 	// Failure is how the call must fail.
 	Failure *Failure `json:"failure,omitempty"`
@@ -82,7 +83,8 @@ func Calls(folder string) ([]*Call, error) {
 	return Read(filepath.Join(folder, "calls"), func(c *Call, name string) { c.Name = name })
 }
 
-// Invoke makes the call over a connection and returns the reply in its JSON form.
+// Invoke makes the call over a connection and returns the reply in its JSON form; that of a
+// stream is the list of its messages.
 func (c *Call) Invoke(ctx context.Context, conn grpc.ClientConnInterface) ([]byte, error) {
 	service, method, _ := strings.Cut(c.Method, ".")
 	d, err := protoregistry.GlobalFiles.FindDescriptorByName(protoreflect.FullName("kinegate.v1." + service))
@@ -98,17 +100,54 @@ func (c *Call) Invoke(ctx context.Context, conn grpc.ClientConnInterface) ([]byt
 	if err != nil {
 		return nil, err
 	}
+	if err := protojson.Unmarshal(c.Request, request); err != nil {
+		return nil, fmt.Errorf("the request of the case: %w", err)
+	}
+	path := "/" + string(s.FullName()) + "/" + method
+	if m.IsStreamingServer() {
+		return stream(ctx, conn, path, request, m.Output())
+	}
 	reply, err := message(m.Output())
 	if err != nil {
 		return nil, err
 	}
-	if err := protojson.Unmarshal(c.Request, request); err != nil {
-		return nil, fmt.Errorf("the request of the case: %w", err)
-	}
-	if err := conn.Invoke(ctx, "/"+string(s.FullName())+"/"+method, request, reply); err != nil {
+	if err := conn.Invoke(ctx, path, request, reply); err != nil {
 		return nil, err
 	}
 	return form(reply)
+}
+
+// stream makes the call of a stream of replies.
+func stream(
+	ctx context.Context, conn grpc.ClientConnInterface, path string, request proto.Message, output protoreflect.MessageDescriptor,
+) ([]byte, error) {
+	s, err := conn.NewStream(ctx, &grpc.StreamDesc{ServerStreams: true}, path)
+	if err != nil {
+		return nil, err
+	}
+	if err := s.SendMsg(request); err != nil {
+		return nil, err
+	}
+	if err := s.CloseSend(); err != nil {
+		return nil, err
+	}
+	var replies []json.RawMessage
+	for {
+		reply, err := message(output)
+		if err != nil {
+			return nil, err
+		}
+		if err := s.RecvMsg(reply); errors.Is(err, io.EOF) {
+			return json.Marshal(replies)
+		} else if err != nil {
+			return nil, err
+		}
+		text, err := form(reply)
+		if err != nil {
+			return nil, err
+		}
+		replies = append(replies, text)
+	}
 }
 
 // message makes an empty message of a type.

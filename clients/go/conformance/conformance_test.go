@@ -9,6 +9,8 @@ import (
 	"testing"
 
 	"google.golang.org/grpc"
+	"google.golang.org/protobuf/reflect/protoreflect"
+	"google.golang.org/protobuf/reflect/protoregistry"
 
 	kinegate "example.org/kinegate/clients/go"
 	"example.org/kinegate/clients/go/conformance"
@@ -108,6 +110,30 @@ func run(
 	}
 }
 
+// TestEveryCallHasACase: each rpc but the judge stream, which has its scripts.
+func TestEveryCallHasACase(t *testing.T) {
+	t.Parallel()
+	calls, err := conformance.Calls(folder)
+	if err != nil {
+		t.Fatal(err)
+	}
+	has := map[string]bool{"SelectionService.Judge": true}
+	for _, c := range calls {
+		has[c.Method] = true
+	}
+	protoregistry.GlobalFiles.RangeFilesByPackage("kinegate.v1", func(file protoreflect.FileDescriptor) bool {
+		for i := range file.Services().Len() {
+			service := file.Services().Get(i)
+			for k := range service.Methods().Len() {
+				if name := string(service.Name()) + "." + string(service.Methods().Get(k).Name()); !has[name] {
+					t.Errorf("%s has no case", name)
+				}
+			}
+		}
+		return true
+	})
+}
+
 // TestBreachesAreNamed plays the scripts against clients that break one rule each.
 func TestBreachesAreNamed(t *testing.T) {
 	t.Parallel()
@@ -120,6 +146,11 @@ func TestBreachesAreNamed(t *testing.T) {
 		{"draining", "", faulty{}},
 		{"credit-of-blocks", "", faulty{}},
 		{"late-accept", "", faulty{}},
+		{"late-reject", "", faulty{}},
+		{"resume-before-any-verdict", "", faulty{}},
+		{"resume-refused", "", faulty{}},
+		{"resume-when-overloaded", "", faulty{}},
+		{"order", "end", faulty{neverEnds: true}},
 		{"order", "order", faulty{swaps: true}},
 		{"order", "order", faulty{skips: true}},
 		{"order-of-verdicts", "order", faulty{takesAnyVerdict: true}},
@@ -132,6 +163,10 @@ func TestBreachesAreNamed(t *testing.T) {
 		{"draining", "draining", faulty{ignoresDraining: true}},
 		{"heartbeat", "heartbeat", faulty{neverBeats: true}},
 		{"late-accept", "late policy", faulty{leavesLate: true}},
+		{"late-reject", "late policy", faulty{acceptsLate: true}},
+		{"resume-before-any-verdict", "resume", faulty{resumesAfterSent: true}},
+		{"resume-refused", "resume", faulty{comesAgain: true}},
+		{"resume-when-overloaded", "resume", faulty{givesUp: true}},
 		// It waits for ever.
 		{"silence", "silence", faulty{}},
 		{"stuck", "stuck", faulty{}},

@@ -8,7 +8,9 @@ import (
 	"time"
 
 	"google.golang.org/grpc"
+	"google.golang.org/grpc/codes"
 	"google.golang.org/grpc/credentials/insecure"
+	"google.golang.org/grpc/status"
 	"google.golang.org/protobuf/proto"
 
 	"example.org/kinegate/clients/go/conformance"
@@ -21,6 +23,7 @@ type faulty struct {
 	swaps, skips, takesAnyVerdict, ignoresCredit            bool
 	resumesFromStart, resumesAfterSent, forgetsDigest       bool
 	takesAnyDigest, ignoresDraining, neverBeats, leavesLate bool
+	acceptsLate, neverEnds, givesUp, comesAgain             bool
 }
 
 func (f faulty) name() string { return fmt.Sprintf("%+v", f) }
@@ -49,7 +52,8 @@ func (f faulty) run(t *testing.T, address string, s *conformance.Script) (verdic
 	if c.blocks, err = s.Events(); err != nil {
 		t.Fatal(err)
 	}
-	for range s.Connections {
+	// Once more than it should.
+	for range len(s.Connections) + 1 {
 		stream, err := kinegatev1.NewSelectionServiceClient(conn).Judge(t.Context())
 		if err != nil {
 			t.Fatal(err)
@@ -79,7 +83,8 @@ func (c *session) connection(st stream) (over bool, err error) {
 	_ = st.Send(&kinegatev1.JudgeRequest{Frame: &kinegatev1.JudgeRequest_Open{Open: open}})
 	response, err := st.Recv()
 	if err != nil {
-		return true, err
+		final := status.Code(err) != codes.Unavailable
+		return (final || c.givesUp) && !c.comesAgain, err
 	}
 	opened := response.GetOpened()
 	if c.digest != "" && opened.GetSelection().GetSelectionDigest() != c.digest && !c.takesAnyDigest {
@@ -93,7 +98,7 @@ func (c *session) connection(st stream) (over bool, err error) {
 		if !draining || c.ignoresDraining {
 			c.send(st, opened.GetCredit())
 		}
-		if c.sent == len(c.blocks) && c.answered == len(c.blocks) {
+		if c.sent == len(c.blocks) && c.answered == len(c.blocks) && !c.neverEnds {
 			_ = st.CloseSend()
 		}
 		response, err := c.next(st)
@@ -169,9 +174,9 @@ func (c *session) take(v *kinegatev1.VerdictBlock) bool {
 		return false
 	}
 	c.answered++
-	for i, status := range v.GetStatuses() {
-		late := kinegatev1.EventStatus(status) == kinegatev1.EventStatus_EVENT_STATUS_EXPIRED
-		if late && c.script.Late == "accept" && !c.leavesLate {
+	for i, s := range v.GetStatuses() {
+		late := kinegatev1.EventStatus(s) == kinegatev1.EventStatus_EVENT_STATUS_EXPIRED
+		if late && (c.acceptsLate || c.script.Late == "accept" && !c.leavesLate) {
 			v.Gate[0] |= 1 << i
 		}
 	}

@@ -14,13 +14,14 @@ import (
 // Play plays the client's side of a script, frame by frame, against a server and returns
 // how the server's frames differ from those of the script.
 func (s *Script) Play(ctx context.Context, server kinegatev1.SelectionServiceClient) error {
+	digest := ""
 	for number, steps := range s.Connections {
 		stream, err := server.Judge(ctx)
 		if err != nil {
 			return err
 		}
 		for i := range steps {
-			if err := playStep(stream, &steps[i], s); err != nil {
+			if err := playStep(stream, &steps[i], s, &digest); err != nil {
 				return &BreachError{steps[i].Rule, fmt.Sprintf("connection %d, step %d: %v", number, i, err)}
 			}
 		}
@@ -34,12 +35,18 @@ type judgeClient interface {
 	CloseSend() error
 }
 
-func playStep(stream judgeClient, step *Step, s *Script) error {
+// pinned stands for the digest of the last opening.
+const pinned = "pinned"
+
+func playStep(stream judgeClient, step *Step, s *Script, digest *string) error {
 	switch {
 	case step.Client != nil:
 		request, err := s.request(step)
 		if err != nil {
 			return err
+		}
+		if named := request.GetOpen().GetSelection().GetNamed(); named.GetSelectionDigest() == pinned {
+			named.SelectionDigest = *digest
 		}
 		// The end of the rpc shows at the next frame of the server.
 		if err := stream.Send(request); err != nil && !errors.Is(err, io.EOF) {
@@ -52,6 +59,9 @@ func playStep(stream judgeClient, step *Step, s *Script) error {
 		response, err := nextFrame(stream)
 		if err != nil {
 			return err
+		}
+		if opened := response.GetOpened(); opened != nil {
+			*digest = opened.GetSelection().GetSelectionDigest()
 		}
 		came, err := form(response)
 		if err != nil {

@@ -81,7 +81,8 @@ def test_call(name: str, channel: grpc.Channel) -> None:
     described = pool.FindServiceByName(f"kinegate.v1.{service}").methods_by_name[method]
     request = message_factory.GetMessageClass(described.input_type)()
     json_format.ParseDict(case["request"], request)
-    call: Any = channel.unary_unary(
+    streams = described.server_streaming
+    call: Any = (channel.unary_stream if streams else channel.unary_unary)(
         f"/kinegate.v1.{service}/{method}",
         request_serializer=lambda m: m.SerializeToString(),
         response_deserializer=message_factory.GetMessageClass(described.output_type).FromString,
@@ -94,11 +95,14 @@ def test_call(name: str, channel: grpc.Channel) -> None:
         if field := case["failure"].get("field"):
             assert field in [v.field for v in error.violations]
         return
-    reply = json_format.MessageToDict(
-        call(request, timeout=10),
-        preserving_proto_field_name=True,
-        always_print_fields_with_no_presence=True,
-    )
+    answer = call(request, timeout=10)
+    replies = [
+        json_format.MessageToDict(
+            m, preserving_proto_field_name=True, always_print_fields_with_no_presence=True
+        )
+        for m in (answer if streams else [answer])
+    ]
+    reply = replies if streams else replies[0]
     agree("", case["reply"], reply, case.get("tolerance", TOLERANCE))
 
 
@@ -197,6 +201,13 @@ def judge(
 @pytest.mark.parametrize("name", STREAMS)
 def test_stream(name: str, double: str) -> None:
     play(double, name, STREAMS[name]["late"]).check(STREAMS[name])
+
+
+@pytest.mark.parametrize("name", [n for n, s in STREAMS.items() if s["against"] == "both"])
+def test_stream_of_a_server(name: str) -> None:
+    script = STREAMS[name]
+    with kinegate.start_server(selection_files=[CASES / "pairs.yaml"]) as running:
+        Outcome("held", *judge(script, running.gate_address, script["late"])).check(script)
 
 
 def test_streams_can_fail(double: str) -> None:
