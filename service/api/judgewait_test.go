@@ -19,7 +19,7 @@ import (
 type gateCaller struct {
 	grpc.ServerStream
 
-	ctx context.Context //nolint:containedctx // that of the call
+	ctx context.Context
 	in  chan *kinegatev1.JudgeRequest
 	out chan *kinegatev1.JudgeResponse
 }
@@ -43,7 +43,7 @@ func (c *gateCaller) Recv() (*kinegatev1.JudgeRequest, error) {
 func (c *gateCaller) RecvMsg(into any) error {
 	m, err := c.Recv()
 	if err == nil {
-		proto.Merge(into.(*Borrowed).Message, m) //nolint:forcetypeassert // the stream receives nothing else
+		proto.Merge(into.(*Borrowed).Message, m)
 	}
 	return err
 }
@@ -57,7 +57,7 @@ func (c *gateCaller) SendMsg(m any) error {
 	response, plain := m.(*kinegatev1.JudgeResponse)
 	if !plain {
 		response = &kinegatev1.JudgeResponse{}
-		if err := proto.Unmarshal(m.(*Encoded).Data.Materialize(), response); err != nil { //nolint:forcetypeassert // as above
+		if err := proto.Unmarshal(m.(*Encoded).Data.Materialize(), response); err != nil {
 			return err
 		}
 	}
