@@ -3,6 +3,7 @@ package generation
 import (
 	"math"
 	"strconv"
+	"strings"
 
 	"example.org/kinegate/kinematics/fault"
 )
@@ -62,7 +63,7 @@ func (p *Product) broad() bool { return p.WidthGeV > 0 && p.Decay != nil }
 // limited says of which products the given limit of the mass, not the lightest final
 // state, is the lowest mass; for a channel that is closed.
 func limited(products []Product) string {
-	text := ""
+	var text strings.Builder
 	for i := range products {
 		p := &products[i]
 		if !p.broad() {
@@ -71,12 +72,12 @@ func limited(products []Product) string {
 		free := *p
 		free.Shape.LowGeV = 0
 		if low := p.lightest(); low > free.lightest() {
-			text += "; min_gev = " + sevenDigits(low) + " of the line shape of particle " + strconv.FormatInt(p.Number, 10) +
-				" counts in it, without it that particle would start at " + sevenDigits(free.lightest()) + " GeV"
+			text.WriteString("; min_gev = " + sevenDigits(low) + " of the line shape of particle " + strconv.FormatInt(p.Number, 10) +
+				" counts in it, without it that particle would start at " + sevenDigits(free.lightest()) + " GeV")
 		}
-		text += limited(p.Decay.Products)
+		text.WriteString(limited(p.Decay.Products))
 	}
-	return text
+	return text.String()
 }
 
 // maxDepth bounds the nesting of decays.

@@ -280,7 +280,8 @@ func (g *generationStream) summary() *kinegatev1.GenerationSummary {
 	}
 	if s.Exhausted > 0 {
 		m.Remarks = append(m.Remarks, strconv.FormatInt(s.Exhausted, 10)+" events were given up after "+
-			strconv.Itoa(generation.MaxAttempts)+" draws, and the others are biased: a bound is too high, or a density too narrow; kinegate bound measures a bound that fits")
+			strconv.Itoa(generation.MaxAttempts)+" draws, and the others are biased: a bound is too high, or a density too narrow; "+
+			"kinegate bound measures a bound that fits")
 	}
 	if s.Overflows > 0 {
 		m.Remarks = append(m.Remarks, strconv.FormatInt(s.Overflows, 10)+" events were above the bound, up to "+
