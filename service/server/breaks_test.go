@@ -94,6 +94,12 @@ func (l *line) freeze(d time.Duration) {
 	}
 }
 
+// narrow gives a client the least windows of flow control.
+func narrow(o *kinegate.Options) {
+	const window = 64 << 10
+	o.DialOptions = append(o.DialOptions, grpc.WithInitialWindowSize(window), grpc.WithInitialConnWindowSize(window))
+}
+
 // count is the number of connections made.
 func (l *line) count() int {
 	l.mu.Lock()
@@ -261,7 +267,8 @@ func TestHistoryAcrossStalls(t *testing.T) {
 			l := r.gateLine()
 			before, answered := cutOff(), 0
 			verify(t, checker, history.Run{
-				Client: r.client(t, l.through), Open: history.AllEntries(), Events: events, PerBlock: perBlock,
+				// One reply fills the windows, so that the server has to wait at once.
+				Client: r.client(t, l.through, narrow), Open: history.AllEntries(), Events: events, PerBlock: perBlock,
 				// Few enough that most of the run is still to come when it stops.
 				Options: kinegate.JudgeOptions{Queue: 8},
 				Answered: func(*kinegatev1.VerdictBlock) {
