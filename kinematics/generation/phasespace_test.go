@@ -29,28 +29,29 @@ func phaseSpace(t testing.TB, masses ...float64) *PhaseSpace {
 	return ps
 }
 
-// The mean weight is the volume within five standard errors; the values are
-// those of testdata/reference/checks.json.
+// knownVolumes are those of testdata/reference/checks.json.
+var knownVolumes = []struct {
+	id     string
+	m      float64
+	masses []float64
+	volume float64
+}{
+	{"PS-008", 1, []float64{0.1, 0.2}, 1.49093314780889850431},
+	{"PS-002", 1, make([]float64, 3), 1.23370055013616982735},
+	{"PS-004", 1, make([]float64, 5), 0.0422782513168413356061},
+	{"PS-006", 1, make([]float64, 8), 6.50243629905373347317e-6},
+	{"PS-010", 0.493677, []float64{0.13957039, 0.13957039, 0.13957039}, 0.0154700324583207731937},
+	{"PS-012", 0.547862, []float64{0.13957039, 0.13957039, 0.1349768}, 0.0466485210711480680234},
+	{"PS-014", 2, []float64{0.1, 0.5, 1}, 0.305601201148934128978},
+	{"PS-016", 1.86484, []float64{0.493677, 0.13957039, 0.13957039, 0.13957039}, 0.8015233689463},
+	{"PS-018", 1, []float64{0.05, 0.1, 0.2, 0.3}, 0.01968610312803},
+}
+
+// The mean weight is the known volume within five standard errors.
 func TestVolumes(t *testing.T) {
 	const draws = 400_000
 	worst := 0.0
-	known := []struct {
-		id     string
-		m      float64
-		masses []float64
-		volume float64
-	}{
-		{"PS-008", 1, []float64{0.1, 0.2}, 1.49093314780889850431},
-		{"PS-002", 1, make([]float64, 3), 1.23370055013616982735},
-		{"PS-004", 1, make([]float64, 5), 0.0422782513168413356061},
-		{"PS-006", 1, make([]float64, 8), 6.50243629905373347317e-6},
-		{"PS-010", 0.493677, []float64{0.13957039, 0.13957039, 0.13957039}, 0.0154700324583207731937},
-		{"PS-012", 0.547862, []float64{0.13957039, 0.13957039, 0.1349768}, 0.0466485210711480680234},
-		{"PS-014", 2, []float64{0.1, 0.5, 1}, 0.305601201148934128978},
-		{"PS-016", 1.86484, []float64{0.493677, 0.13957039, 0.13957039, 0.13957039}, 0.8015233689463},
-		{"PS-018", 1, []float64{0.05, 0.1, 0.2, 0.3}, 0.01968610312803},
-	}
-	for i, k := range known {
+	for i, k := range knownVolumes {
 		t.Run(k.id, func(t *testing.T) {
 			ps := phaseSpace(t, k.masses...)
 			s := random.New(11, random.Generation, int64(i))
@@ -69,7 +70,7 @@ func TestVolumes(t *testing.T) {
 			}
 		})
 	}
-	t.Logf("worst of %d volumes: %.1f standard errors of %d draws", len(known), worst, draws)
+	t.Logf("worst of %d volumes: %.1f standard errors of %d draws", len(knownVolumes), worst, draws)
 }
 
 // Massless volumes have a closed form for every n:

@@ -259,7 +259,7 @@ func (s *parquetSink) add(header *kinegatev1.GenerationHeader, _ *kinegatev1.Gen
 		}
 		if e.seen != nil {
 			for _, o := range e.seen.Objects {
-				w.Text(columnClass, strings.ToLower(strings.TrimPrefix(o.Class.String(), "OBJECT_CLASS_")))
+				w.Text(columnClass, enumWord(o.Class, "OBJECT_CLASS_"))
 				doubles(columnObject, o.Values[0], o.Values[1], o.Values[2])
 				w.Int64(columnMeasured, int64(o.Measured))
 			}

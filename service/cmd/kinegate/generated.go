@@ -286,7 +286,7 @@ func (g *generated) table() error {
 // seenRow is a measured object: its mass and, but for photons, its energy are no measurement, and
 // without a momentum there is the direction alone.
 func seenRow(o *kinegate.Object) []string {
-	class := strings.ToLower(strings.TrimPrefix(o.Class.String(), "OBJECT_CLASS_"))
+	class := enumWord(o.Class, "OBJECT_CLASS_")
 	value := func(k int, show func(float64) string) string {
 		if o.Measured != 0 && o.Measured>>k&1 == 0 {
 			return "-"

@@ -171,7 +171,12 @@ func stateText(s kinegatev1.ChannelState) string {
 }
 
 func decayClassText(c kinegatev1.DecayClass) string {
-	return strings.ToLower(strings.TrimPrefix(c.String(), "DECAY_CLASS_"))
+	return enumWord(c, "DECAY_CLASS_")
+}
+
+// enumWord is the name of an enum value as a page or a file has it.
+func enumWord(value fmt.Stringer, prefix string) string {
+	return strings.ToLower(strings.TrimPrefix(value.String(), prefix))
 }
 
 // thresholdRows adds what is known of a threshold.
@@ -267,7 +272,7 @@ func (e *environment) productLimits(r *kinegatev1.DescribeReactionResponse) erro
 		e.print("")
 		t := text.NewTable("momentum transfer", ">forward", ">backward")
 		for _, m := range r.GetMomentumTransfers() {
-			initial := strings.ToLower(strings.TrimPrefix(m.GetInitial().String(), "INITIAL_PARTICLE_"))
+			initial := enumWord(m.GetInitial(), "INITIAL_PARTICLE_")
 			t.Row(fmt.Sprintf("t(%s, %s)", initial, strings.Join(m.GetProducts(), " ")),
 				fmt.Sprintf("%.6g GeV^2", m.GetTForwardGev2()), fmt.Sprintf("%.6g GeV^2", m.GetTBackwardGev2()))
 		}

@@ -3,6 +3,7 @@ package main
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 
 	kinegate "example.org/kinegate/clients/go"
@@ -17,6 +18,8 @@ type verdictFile struct {
 
 	outline   []*kinegatev1.HypothesisOutline
 	uncertain []bool // the hypotheses that report uncertainties
+	// recorded are the observables of each hypothesis, in a file of events.
+	recorded [][]recorded
 	// row adds the rows of event i.
 	row func(event *eventfile.Event, v *kinegate.Verdicts, i int) error
 	// noun is what a row is of.
@@ -30,7 +33,7 @@ func (j *judgeRun) newVerdictFile() (*verdictFile, error) {
 		f.uncertain = append(f.uncertain, h.GetRecordUncertainties())
 	}
 	columns := f.eventColumns()
-	f.row, f.noun = f.eventRow, "event"
+	f.row, f.noun, f.recorded = f.eventRow, "event", recordedBy(f.outline)
 	if j.entries != "" {
 		columns, f.row, f.noun = f.entryColumns(), f.entryRows, "entry"
 	}
@@ -39,7 +42,20 @@ func (j *judgeRun) newVerdictFile() (*verdictFile, error) {
 	return f, err
 }
 
-// whole, double and word are columns.
+// recordedBy are the observables of each hypothesis.
+func recordedBy(outline []*kinegatev1.HypothesisOutline) [][]recorded {
+	all := make([][]recorded, len(outline))
+	for h, o := range outline {
+		for k := range o.GetObservables() {
+			index := slices.Repeat([]int{-1}, len(outline))
+			index[h] = k
+			all[h] = append(all[h], recorded{group: -1, index: index})
+		}
+	}
+	return all
+}
+
+// Columns by the kind of their cells.
 func wholeColumn(name string) parquet.Column {
 	return parquet.Column{Name: name, Kind: parquet.Int64}
 }
@@ -68,11 +84,6 @@ func (f *verdictFile) bit(b bool) {
 	}
 }
 
-// enumWord is the name of an enum value as a file has it.
-func enumWord(value fmt.Stringer, prefix string) string {
-	return strings.ToLower(strings.TrimPrefix(value.String(), prefix))
-}
-
 func (f *verdictFile) eventColumns() []parquet.Column {
 	columns := append(headColumns(), doubleColumn("weight"))
 	for _, h := range f.outline {
@@ -87,15 +98,10 @@ func (f *verdictFile) eventColumns() []parquet.Column {
 func (f *verdictFile) eventRow(event *eventfile.Event, v *kinegate.Verdicts, i int) error {
 	f.head(event, v, i)
 	f.number(event.Weight)
-	for h, o := range f.outline {
+	for h := range f.outline {
 		f.bit(v.Accepted(h, i))
-		for k := range o.GetObservables() {
-			r := recorded{group: -1, index: make([]int, len(f.outline))}
-			for other := range r.index {
-				r.index[other] = -1
-			}
-			r.index[h] = k
-			x, _ := r.value(v, i)
+		for k := range f.recorded[h] {
+			x, _ := f.recorded[h][k].value(v, i)
 			f.number(x)
 		}
 	}
